@@ -1,0 +1,107 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Point values: the readable reference. One pass over the nodes in the order of
+ * their numbers, each by the point rule of its row in the op table. Owns the values;
+ * the graph is borrowed and may grow between calls. */
+#include "eval/state.h"
+
+#include <assert.h>
+#include <math.h>
+
+/* The array with room for at least n elements in all. */
+#define ROOM(v, arr, want) \
+    ((arr)->n = 0, array_reserve((v)->arena, (arr), (want)), (arr)->n = (want), (arr)->at)
+
+struct eval *eval_new(struct arena *a, const struct graph *g)
+{
+    struct eval *v = NEW(a, struct eval);
+    v->arena = a;
+    v->g = g;
+    return v;
+}
+
+const double *eval_gather(struct eval *v, node_id n)
+{
+    size_t count = graph_at(v->g, n)->n;
+    const node_id *args = graph_args(v->g, n);
+    double *x = ROOM(v, &v->args, count);
+    for (size_t i = 0; i < count; i++)
+        x[i] = v->value.at[args[i]];
+    return x;
+}
+
+/* Where a probability was made as a complement, what it is the complement of is
+ * more accurate than 1 - p. */
+static double complement_of(const struct eval *v, node_id n)
+{
+    if (graph_at(v->g, n)->op == OP_COMPLEMENT)
+        return v->value.at[graph_args(v->g, n)[0]];
+    return 1 - v->value.at[n];
+}
+
+void eval_diagram(struct eval *v, node_id n, double *results)
+{
+    const struct diagram *d = graph_diagram_of(v->g, n);
+    const node_id *args = graph_args(v->g, n);
+    size_t count = graph_at(v->g, n)->n;
+    const double *p = eval_gather(v, n);
+    double *q = ROOM(v, &v->q, count);
+    for (size_t i = 0; i < count; i++)
+        q[i] = complement_of(v, args[i]);
+    diagram_evaluate(d, p, q, ROOM(v, &v->work, d->n_nodes + 2), results);
+}
+
+/* The place of a DIAGRAM's results; NaN when one of them is not finite. */
+static double diagram_place(struct eval *v, node_id n)
+{
+    size_t n_roots = graph_diagram_of(v->g, n)->n_roots, place = v->results.n;
+    array_reserve(v->arena, &v->results, n_roots);
+    eval_diagram(v, n, v->results.at + place);
+    for (size_t k = 0; k < n_roots; k++)
+        if (!isfinite(v->results.at[place + k]))
+            return NAN;
+    v->results.n += n_roots;
+    return (double)place;
+}
+
+static double node_value(struct eval *v, node_id n)
+{
+    const struct graph_node *node = graph_at(v->g, n);
+    switch (node->op) {
+    case OP_CONST:
+    case OP_INPUT:
+        return node->constant;
+    case OP_DIAGRAM:
+        return diagram_place(v, n);
+    case OP_PICK:
+        return v->results.at[(size_t)v->value.at[*graph_args(v->g, n)] + node->extra];
+    default:
+        return graph_point(node->op, node->n, eval_gather(v, n));
+    }
+}
+
+ohmen_status eval_point(struct eval *v, node_id *culprit, ohmen_error *e)
+{
+    size_t size = graph_size(v->g);
+    v->value.n = v->done;
+    array_reserve(v->arena, &v->value, size - v->done);
+    v->value.n = size;
+    for (; v->done < size; v->done++) {
+        node_id n = (node_id)v->done;
+        double x = node_value(v, n);
+        if (!isfinite(x)) {
+            if (culprit)
+                *culprit = n;
+            return error_set(e, OHMEN_COMPUTE,
+                             "node %u (%s) of the calculation has no finite value", (unsigned)n,
+                             graph_op_info(graph_at(v->g, n)->op)->name);
+        }
+        v->value.at[n] = x;
+    }
+    return OHMEN_OK;
+}
+
+double eval_value(const struct eval *v, node_id n)
+{
+    assert(n < v->done && graph_at(v->g, n)->op != OP_DIAGRAM);
+    return v->value.at[n];
+}

@@ -1,0 +1,35 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What an evaluation holds, inside src/eval.
+ *
+ * Invariant: value[i] is that of node i for i < done. A DIAGRAM has many results:
+ * its value is where they begin in `results`, a whole number that PICK adds to.
+ * The scratch arrays are as long as the longest list of arguments and the largest
+ * diagram met so far. */
+#ifndef EVAL_STATE_H
+#define EVAL_STATE_H
+
+#include "eval/eval.h"
+#include "graph/diagram.h"
+
+struct eval {
+    struct arena *arena;
+    const struct graph *g;
+    ARRAY(double) value;
+    size_t done;
+    ARRAY(double) results;   /* of all DIAGRAM nodes */
+    ARRAY(double) weights;   /* backward: of results */
+    ARRAY(double) args;      /* scratch: values of arguments, p of a diagram */
+    ARRAY(double) q;         /* scratch: complements of p */
+    ARRAY(double) arg_back;  /* scratch: derivatives of arguments */
+    ARRAY(double) work;      /* scratch: probabilities of a diagram's nodes */
+    ARRAY(double) work_back; /* scratch: derivatives of them */
+};
+
+/* The arguments of node n as numbers, in v->args. */
+const double *eval_gather(struct eval *v, node_id n);
+
+/* Computes all roots of DIAGRAM node n into `results` (room for them is there);
+ * leaves p in v->args, q in v->q and the nodes' probabilities in v->work. */
+void eval_diagram(struct eval *v, node_id n, double *results);
+
+#endif

@@ -1,0 +1,160 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The calculation graph: nodes of operations, in sections.
+ *
+ * A node is an operation on earlier nodes, with a dimension. Nodes are appended
+ * and never changed; their arguments always have smaller numbers, so the order of
+ * numbers is an order of evaluation. A section is a contiguous range of nodes that
+ * was built together; it may read exports of earlier sections only (any node of
+ * theirs). Inside a section equal operations on equal arguments are one node.
+ * Nothing is computed while building, so that what was written can be explained.
+ * Constants and inputs are nodes of each section that uses them.
+ *
+ * There is no domain word here: what a node stands for is the caller's business.
+ * Names and formulas are made on demand by src/figure. */
+#ifndef GRAPH_GRAPH_H
+#define GRAPH_GRAPH_H
+
+#include "base/error.h"
+#include "base/text.h"
+#include "math/dim.h"
+
+typedef uint32_t node_id;
+#define NODE_NONE UINT32_MAX
+
+/* The op table: one row an operation. Columns: name, least and greatest number of
+ * arguments (255 = any), symbol in formulas, binding strength of the symbol (0: a
+ * call such as `min(a; b)`). Point rules, backward rules, unit rules and `lower`
+ * are in ops.c beside one another; a loop over the table fails in tests for a row
+ * without one of them.
+ *
+ * SUM of nothing is the number 0. MIN and MAX of a NaN are NaN, and -0 is below +0.
+ * LOOKUP is v of the last b that x reaches (x >= b), and v1 below b1; the b rise. */
+#define GRAPH_OPS(X)                                                                   \
+    X(CONST, "const", 0, 0, "", 9)      /* a number                                */  \
+    X(INPUT, "input", 0, 0, "", 9)      /* an uncertain input, by its mean         */  \
+    X(ADD, "add", 2, 2, "+", 1)                                                        \
+    X(SUBTRACT, "subtract", 2, 2, "-", 1)                                              \
+    X(MULTIPLY, "multiply", 2, 2, "*", 2)                                              \
+    X(DIVIDE, "divide", 2, 2, "/", 2)                                                  \
+    X(NEGATE, "negate", 1, 1, "-", 3)                                                  \
+    X(POWER, "power", 2, 2, "^", 4)     /* exponent: a CONST                        */ \
+    X(COMPLEMENT, "complement", 1, 1, "1 - ", 1) /* 1 - x                           */ \
+    X(RATIO, "ratio", 2, 2, "ratio", 0) /* x / y; 0 where x is 0: a mean over nothing */    \
+    X(SUM, "sum", 0, 255, "+", 1)       /* in the order of arguments, compensated   */ \
+    X(MIN, "min", 1, 255, "min", 0)                                                    \
+    X(MAX, "max", 1, 255, "max", 0)                                                    \
+    X(EXP, "exp", 1, 1, "exp", 0)                                                      \
+    X(LOG, "log", 1, 1, "log", 0)                                                      \
+    X(SQRT, "sqrt", 1, 1, "sqrt", 0)                                                   \
+    X(LOOKUP, "lookup", 3, 255, "lookup", 0) /* x, b1, v1, b2, v2, ...; b CONST     */ \
+    X(ANNUITY, "annuity", 3, 3, "annuity", 0) /* rate, from, to: see graph_annuity  */ \
+    X(DIAGRAM, "diagram", 0, 255, "diagram", 0) /* a decision diagram: many results  */\
+    X(PICK, "pick", 1, 1, "pick", 0)    /* one result of a DIAGRAM                  */
+
+enum graph_op {
+#define X(op, name, least, most, symbol, strength) OP_##op,
+    GRAPH_OPS(X)
+#undef X
+    OP_COUNT
+};
+
+struct graph_node {
+    uint16_t op;
+    uint16_t dim;     /* index: graph_dim */
+    uint32_t n;       /* arguments */
+    uint32_t first;   /* index of the first argument: graph_args */
+    uint32_t extra;   /* INPUT: caller's number of the input; PICK: which result;
+                         DIAGRAM: index of the diagram: graph_diagram_of */
+    double constant;  /* CONST: the value; INPUT: the mean */
+};
+
+struct graph;
+
+/* Lives in `a`. Single-threaded while it is built; afterwards readers may share it
+ * (graph_degree excepted). */
+struct graph *graph_new(struct arena *a);
+
+/* Sections. `tag` is the caller's number for it. Sections do not nest. */
+typedef uint32_t section_id;
+section_id graph_section_begin(struct graph *g, uint32_t tag);
+void graph_section_end(struct graph *g);
+size_t graph_sections(const struct graph *g);
+/* The nodes of a section: first .. first + count - 1. */
+void graph_section(const struct graph *g, section_id s, node_id *first, size_t *count,
+                   uint32_t *tag);
+section_id graph_section_of(const struct graph *g, node_id n);
+
+/* Building, inside a section. Dimensions are checked by each op's unit rule; a
+ * mismatch is a programming error of the caller (documents were checked before)
+ * and asserts. All return an existing node where one is equal. */
+node_id graph_const(struct graph *g, double value, struct dim dim);
+node_id graph_input(struct graph *g, uint32_t input, double mean, struct dim dim);
+node_id graph_op(struct graph *g, enum graph_op op, size_t n, const node_id *args);
+node_id graph_op1(struct graph *g, enum graph_op op, node_id x);
+node_id graph_op2(struct graph *g, enum graph_op op, node_id x, node_id y);
+
+/* Present value of 1 per year paid in the middle of each year from `from` to `to`
+ * (years from now, whole or not, from <= to) at interest `rate` per year:
+ * sum over the years of length d starting at t of d (1 + rate)^-(t + d/2);
+ * broken years at the ends count with their length at their own middle.
+ * Years begin at whole numbers; a stretch inside one year is one broken year.
+ * Not a number where from > to, rate <= -1 or a year is beyond 2^53.
+ * For whole years n from 0: (1 - (1+r)^-n)/r * (1+r)^0.5, the uniform series
+ * present worth factor times half a year's interest (any engineering economy
+ * text, e.g. the (P/A, i, n) tables). rate 0 gives to - from. All pure numbers. */
+node_id graph_annuity(struct graph *g, node_id rate, node_id from, node_id to);
+
+/* A decision diagram over Boolean variables with independent probabilities (see
+ * diagram.h) as an operation: args[i] is the probability that variable i is true,
+ * n is at least the diagram's n_variables. Where args[i] is a COMPLEMENT node, the
+ * probability of false is its argument, however small, and not 1 - (1 - x).
+ * The diagram is borrowed for the life of the graph; equal ones are kept once.
+ * Returns the DIAGRAM node; graph_pick takes the probability of root k. */
+struct diagram;
+node_id graph_diagram(struct graph *g, const struct diagram *d, size_t n, const node_id *args);
+node_id graph_pick(struct graph *g, node_id diagram, uint32_t root);
+
+/* Reading. The pointers stay readable while the graph grows, since nodes never
+ * change and an arena keeps what it gave. */
+size_t graph_size(const struct graph *g);
+const struct graph_node *graph_at(const struct graph *g, node_id n);
+const node_id *graph_args(const struct graph *g, node_id n);
+struct dim graph_dim(const struct graph *g, node_id n);
+const struct diagram *graph_diagram_of(const struct graph *g, node_id n);
+
+/* One row of the op table as data. */
+struct graph_op_info {
+    const char *name, *symbol;
+    unsigned least, most, strength;
+};
+const struct graph_op_info *graph_op_info(enum graph_op op);
+
+/* The point rule of an operation (not for CONST, INPUT, DIAGRAM, PICK), used by
+ * src/eval and in tests; and its backward rule: adds
+ * weight * d result / d args[i] to back[i]. At a tie of min or max the first arm
+ * takes it all. */
+double graph_point(enum graph_op op, size_t n, const double *args);
+void graph_backward(enum graph_op op, size_t n, const double *args, double result, double weight,
+                    double *back);
+
+/* Copies `root` and what it needs into the open section of `to`, every macro
+ * operation (ANNUITY, DIAGRAM, SUM, LOOKUP, COMPLEMENT ...) replaced by its
+ * expansion into scalar operations: the oracle of the tests. Inputs keep their
+ * numbers. An ANNUITY whose `from` or `to` is not constant, or which is longer than
+ * 4096 years, has no such expansion and stays. Not for a DIAGRAM; `from` may be `to`. */
+node_id graph_lower(struct graph *to, const struct graph *from, node_id root);
+
+/* The degree of `root` in its uncertain inputs: 0 none, 1 at most once each (then
+ * the value at the means is the mean, exactly, for independent inputs), 2 more
+ * (an input that enters twice, or a curved operation). A DIAGRAM counts each
+ * argument once per path, so shared independent arguments keep degree 1; two
+ * variables whose probabilities share an input make 2, whether or not a path meets
+ * both. Nodes are worked through once for all questions, and what was found is kept
+ * in the graph's arena: not to be asked from several threads at once. */
+int graph_degree(const struct graph *g, node_id root);
+
+/* One line a node, for people and tests: number, op, arguments, constant, dim (see
+ * dump.c for examples). */
+void graph_dump(struct text *out, const struct graph *g);
+
+#endif
