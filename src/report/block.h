@@ -1,0 +1,161 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Reports as neutral blocks of typed cells, and their writers.
+ *
+ * A use case fills a `struct report`; a writer prints it as text, JSON or CSV. No
+ * writer computes: it only rounds for display. Each number carries its value in
+ * the unit that it is shown in, and the name of the figure that it is, so that
+ * every printed digit can be explained. Text is data: writers make it harmless.
+ * The builders copy the texts that they are given into the report's arena; whoever
+ * sets a field of a struct directly answers for its life himself. */
+#ifndef REPORT_BLOCK_H
+#define REPORT_BLOCK_H
+
+#include <stdbool.h>
+
+#include "base/error.h"
+#include "base/text.h"
+
+enum block_type { BLOCK_HEADING, BLOCK_NOTE, BLOCK_PAIRS, BLOCK_TABLE, BLOCK_GRID };
+
+enum cell_type {
+    CELL_EMPTY,
+    CELL_TEXT,   /* text */
+    CELL_NUMBER, /* number, in the column's unit */
+    CELL_COUNT,  /* a whole number: number, printed without rounding */
+    CELL_DATE,   /* text, YYYY-MM-DD */
+    CELL_YES     /* number 1 or 0, printed as yes or no */
+};
+
+/* How a column of numbers is printed. */
+enum number_style {
+    STYLE_PLAIN,       /* three significant digits; below 0.01 and from 1e5 with an exponent:
+                          0.0123, 1.23e-3, 12300, 1.23e5. Zeros at the end of a fraction
+                          are not printed */
+    STYLE_MONEY,       /* prefix k, M or G chosen once for the column: "kEUR" in the head */
+    STYLE_FREQUENCY,   /* per year; below 0.1 with an exponent, as 2.94e-3, and, in a cell of
+                          its own when there is room, as "1 in 340 a" */
+    STYLE_PROBABILITY, /* as PLAIN: 0.0123, 4.1e-5, 1; more digits where a number below 1
+                          would read as 1: 0.9999 (down to 1 - 1e-12) */
+    STYLE_PERCENT,     /* the value 0.123 printed as 12.3 under the unit %; 99.99 as it is. JSON
+                          and CSV have the pure number 0.123, without a unit */
+    STYLE_RATIO        /* 1.23 */
+};
+
+struct cell {
+    enum cell_type type;
+    const char *text;   /* or NULL */
+    double number;
+    const char *figure; /* name of the figure, or NULL */
+    const char *mark;   /* a short remark behind the cell such as "!" with a note, or NULL */
+    const char *unit;         /* numbers of a BLOCK_PAIRS; a table's are its columns' */
+    enum number_style style;
+};
+
+struct column {
+    const char *key;   /* in JSON and CSV: lower case with hyphens, unique in the table */
+    const char *head;  /* "Risk" */
+    const char *unit;  /* "EUR/a", "1/a", "" */
+    enum number_style style;
+    bool right;        /* text to the right (numbers always align on the point) */
+    unsigned keep;     /* columns with a smaller number are dropped first when the page is
+                          too narrow; 0 may never be dropped. JSON and CSV have them all */
+};
+
+struct row ARRAY_BODY(struct cell);
+
+/* A mark of the grid: a point with a label, and perhaps an arrow to another one. */
+struct grid_mark {
+    const char *label;   /* short, printed beside the mark */
+    const char *name;    /* long, printed in the key below */
+    double frequency;    /* per year, > 0 (0: listed in the key as never) */
+    double damage;       /* money, > 0 (0: listed in the key as without damage) */
+    int arrow_from;      /* index of the mark that it starts from, -1: none */
+    const char *frequency_figure, *damage_figure;
+};
+
+struct grid_line {
+    const char *name; /* "intolerable above 100 kEUR/a" */
+    double risk;      /* money per year, > 0 */
+    const char *symbol; /* one character that draws it */
+};
+
+struct grid {
+    const char *currency;
+    ARRAY(struct grid_mark) marks;
+    ARRAY(struct grid_line) lines;
+};
+
+struct block {
+    enum block_type type;
+    const char *key;     /* in JSON: names the block; NULL: not printed there (headings) */
+    const char *title;   /* heading text, table title, or NULL */
+    int level;           /* headings: 1, 2, 3 */
+    const char *text;    /* BLOCK_NOTE: a paragraph, filled to the width; lines that begin with
+                            two blanks are kept as they are */
+    ARRAY(struct column) columns; /* BLOCK_TABLE; BLOCK_PAIRS has two: name, value */
+    ARRAY(struct row) rows;
+    struct grid *grid;
+};
+
+struct report {
+    struct arena *arena;
+    ARRAY(struct block) blocks;
+};
+
+void report_init(struct report *r, struct arena *a);
+
+struct block *report_heading(struct report *r, int level, const char *title);
+struct block *report_note(struct report *r, const char *key, const char *format, ...)
+    __attribute__((format(printf, 3, 4)));
+struct block *report_pairs(struct report *r, const char *key, const char *title);
+struct block *report_table(struct report *r, const char *key, const char *title);
+struct block *report_grid(struct report *r, const char *key, const char *title,
+                          const char *currency);
+
+/* Adds a column to a table; returns it, for `right` and `keep`. Pointers into a
+ * block are valid until the next addition to the same array. */
+struct column *block_column(struct report *r, struct block *b, const char *key, const char *head,
+                            const char *unit, enum number_style style);
+struct row *block_row(struct report *r, struct block *b);
+struct cell *row_text(struct report *r, struct row *row, const char *text);
+struct cell *row_number(struct report *r, struct row *row, double number, const char *figure);
+struct cell *row_count(struct report *r, struct row *row, uint64_t n);
+struct cell *row_date(struct report *r, struct row *row, const char *date); /* YYYY-MM-DD */
+struct cell *row_yes(struct report *r, struct row *row, bool yes);
+struct cell *row_empty(struct report *r, struct row *row);
+/* A named value of a BLOCK_PAIRS: its name, then one cell by the functions above;
+ * a number's unit and style are given here. */
+struct row *block_pair(struct report *r, struct block *b, const char *name);
+struct cell *pair_number(struct report *r, struct row *row, double number, const char *unit,
+                         enum number_style style, const char *figure);
+
+/* A mark (without an arrow and figures: set them in the result) and a line of a grid. */
+struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *label,
+                                const char *name, double frequency, double damage);
+struct grid_line *grid_add_line(struct report *r, struct block *b, const char *name, double risk,
+                                const char *symbol);
+
+struct report_format {
+    unsigned width; /* columns: 60..200 */
+    bool ascii;     /* only ASCII characters */
+    bool colour;    /* SGR sequences beside, never instead of, letters and marks */
+};
+
+void report_write_text(struct text *out, const struct report *r, const struct report_format *f);
+/* One JSON object: {"blocks": [...]}, every cell as {"value": ..., "unit": ..., "figure": ...}
+ * or plain text; stable key order; ends in a newline. */
+void report_write_json(struct text *out, const struct report *r);
+/* Every table of the report as RFC 4180 rows under a header of keys (with "-UNIT"
+ * appended where a unit is known: risk-EUR/a); tables are parted by an empty line. */
+void report_write_csv(struct text *out, const struct report *r);
+
+/* The parts that other writers and tests use: three significant digits of the exact
+ * double, rounded half to even; -0 is 0, an infinity "infinite". buf: 32 bytes. */
+char *number_text(char *buf, double x, enum number_style style);
+/* One amount with its unit, as "12.3 kEUR/a"; unit "EUR/a". */
+const char *money_text(struct arena *a, double x, const char *unit);
+/* "1 in 340 a" for 2.94e-3 per year; "3.1 per a" from 1 per year; "never" for 0;
+ * "undefined" below 0. buf: 32 bytes. */
+char *return_period_text(char *buf, double per_year);
+
+#endif

@@ -1,0 +1,104 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The tables of a report as comma-separated values (RFC 4180: CR LF, quotes where
+ * needed). Control and invisible characters are shown, not sent; texts that a
+ * spreadsheet would take for a formula are guarded. Owns nothing. */
+#include <assert.h>
+#include <math.h>
+#include <string.h>
+
+#include "report/block.h"
+#include "report/clean.h"
+
+struct csv_out {
+    struct text *out;
+    struct arena *arena;
+};
+
+static bool is_plain_number(const char *s)
+{
+    double x;
+    s += *s == '-' || *s == '+';
+    return text_to_double(s, s + strlen(s), &x);
+}
+
+/* Spreadsheets compute a cell that begins with one of these. A cell that begins
+ * with an apostrophe already is left: it is no formula. */
+static bool is_formula(const char *s)
+{
+    return *s && strchr("=+-@\t\r", *s) && !is_plain_number(s);
+}
+
+static void csv_cell(struct csv_out *w, const char *s)
+{
+    const char *guard = is_formula(s) ? "'" : "";
+    if (!s[strcspn(s, ",\"\r\n")] && *s != ' ' && (!*s || s[strlen(s) - 1] != ' ')) {
+        text_printf(w->out, "%s%s", guard, s);
+        return;
+    }
+    text_printf(w->out, "\"%s", guard);
+    for (; *s; s++)
+        text_addn(w->out, *s == '"' ? "\"\"" : s, *s == '"' ? 2 : 1);
+    text_byte(w->out, '"');
+}
+
+static const char *cell_value(struct csv_out *w, const struct cell *c)
+{
+    char buf[32];
+    switch (c->type) {
+    case CELL_EMPTY: return "";
+    case CELL_YES: return c->number != 0 ? "yes" : "no";
+    case CELL_TEXT:
+    case CELL_DATE: return clean_text(w->arena, c->text, false);
+    case CELL_NUMBER:
+    case CELL_COUNT: break;
+    }
+    assert(isfinite(c->number));
+    return arena_str(w->arena, text_double(buf, c->number == 0 ? 0 : c->number));
+}
+
+static const char *header_value(struct csv_out *w, const struct column *c)
+{
+    const char *key = clean_text(w->arena, c->key, false);
+    const char *unit = clean_text(w->arena, c->style == STYLE_PERCENT ? "" : c->unit, false);
+    return *unit ? arena_printf(w->arena, "%s-%s", key, unit) : key;
+}
+
+static void write_header(struct csv_out *w, const struct block *b)
+{
+    for (size_t j = 0; j < b->columns.n; j++) {
+        text_add(w->out, j ? "," : "");
+        csv_cell(w, header_value(w, &b->columns.at[j]));
+    }
+    text_add(w->out, "\r\n");
+}
+
+/* A row of one empty cell is quoted: an empty line would part two tables. */
+static void write_row(struct csv_out *w, const struct block *b, const struct row *row)
+{
+    static const struct cell empty = {.type = CELL_EMPTY};
+    for (size_t j = 0; j < b->columns.n; j++) {
+        const char *value = cell_value(w, j < row->n ? &row->at[j] : &empty);
+        text_add(w->out, j ? "," : "");
+        if (b->columns.n == 1 && !*value)
+            text_add(w->out, "\"\"");
+        else
+            csv_cell(w, value);
+    }
+    text_add(w->out, "\r\n");
+}
+
+void report_write_csv(struct text *out, const struct report *r)
+{
+    struct csv_out w = {out, arena_child(out->arena)};
+    size_t n = 0;
+    for (size_t i = 0; i < r->blocks.n; i++) {
+        const struct block *b = &r->blocks.at[i];
+        if (b->type != BLOCK_TABLE || b->columns.n == 0)
+            continue;
+        text_add(out, n++ ? "\r\n" : "");
+        write_header(&w, b);
+        for (size_t k = 0; k < b->rows.n; k++)
+            write_row(&w, b, &b->rows.at[k]);
+    }
+    arena_free(w.arena);
+}

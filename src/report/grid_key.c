@@ -1,0 +1,160 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The key of a grid. Its table of marks is an ordinary table block, so that its
+ * numbers look as they do everywhere. Owns nothing. */
+#include "report/grid_key.h"
+
+#include <math.h>
+#include <string.h>
+
+static const char *label_of(const struct grid_plane *g, size_t i)
+{
+    return page_clean(g->page, g->grid->marks.at[i].label);
+}
+
+/* Names of the criteria often hold their risk already. */
+static const char *line_words(const struct grid_plane *g, const struct grid_line *l)
+{
+    struct arena *a = g->page->arena;
+    const char *unit = page_clean(g->page, arena_printf(a, "%s/a", g->grid->currency));
+    const char *risk = money_text(a, l->risk, unit), *name = page_clean(g->page, l->name);
+    return strstr(name, risk) ? name : arena_printf(a, "%s: %s", name, risk);
+}
+
+/* A line of the plane is seen when its risk is between those of two corners. */
+static bool crosses_plane(const struct grid_plane *g, double risk)
+{
+    double k = log10(risk);
+    return k > g->frequency_low + g->damage_low && k < g->frequency_high + g->damage_high;
+}
+
+static void write_signs(struct page *p, const struct grid_plane *g)
+{
+    const struct grid *grid = g->grid;
+    struct pair *pairs = NEW_ARRAY(p->arena, grid->lines.n + 1, struct pair);
+    for (size_t i = 0; i < grid->lines.n; i++) {
+        const char *s = g->symbols[i];
+        const char *words = line_words(g, &grid->lines.at[i]);
+        if (!crosses_plane(g, grid->lines.at[i].risk))
+            words = arena_printf(p->arena, "%s (outside the picture)", words);
+        pairs[i] = (struct pair){arena_printf(p->arena, "%s%s%s%s", s, s, s, s), words, ""};
+    }
+    pairs[grid->lines.n] =
+        (struct pair){p->ascii ? ". ." : "· ·", "equal risk, one line a decade", ""};
+    page_pairs(p, pairs, grid->lines.n + 1);
+    page_blank(p);
+}
+
+static void write_marks(struct page *p, const struct grid_plane *g)
+{
+    const struct grid *grid = g->grid;
+    struct report r;
+    report_init(&r, p->arena);
+    struct block *b = report_table(&r, NULL, NULL);
+    const char *risk = arena_printf(p->arena, "%s/a", grid->currency);
+    block_column(&r, b, "mark", "Mark", "", STYLE_PLAIN);
+    block_column(&r, b, "name", "Name", "", STYLE_PLAIN);
+    block_column(&r, b, "frequency", "Frequency", "1/a", STYLE_FREQUENCY)->keep = 2;
+    block_column(&r, b, "damage", "Damage", grid->currency, STYLE_MONEY)->keep = 1;
+    block_column(&r, b, "risk", "Risk", risk, STYLE_MONEY)->keep = 3;
+    for (size_t i = 0; i < grid->marks.n; i++) {
+        const struct grid_mark *m = &grid->marks.at[i];
+        struct row *row = block_row(&r, b);
+        row_text(&r, row, m->label);
+        row_text(&r, row, m->name);
+        row_number(&r, row, m->frequency, NULL);
+        row_number(&r, row, m->damage, NULL);
+        row_number(&r, row, m->frequency * m->damage, NULL);
+    }
+    page_table(p, b);
+}
+
+/* "before: A, B." for the marks that `test` picks; nothing when there are none. */
+static void write_list(struct page *p, const struct grid_plane *g, const char *before,
+                       bool (*test)(const struct grid_plane *g, size_t i))
+{
+    struct text t;
+    text_init(&t, p->arena);
+    for (size_t i = 0; i < g->grid->marks.n; i++)
+        if (test(g, i))
+            text_printf(&t, "%s %s", t.n ? "," : before, label_of(g, i));
+    if (t.n)
+        page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+}
+
+static void write_company(struct page *p, const struct grid_plane *g, size_t first)
+{
+    struct text t;
+    text_init(&t, p->arena);
+    text_printf(&t, "%zu at one place:", g->spots[first].company);
+    for (size_t i = first; i < g->grid->marks.n; i++)
+        if (g->spots[i].placed && g->spots[i].first == first)
+            text_printf(&t, "%s %s", i == first ? "" : ",", label_of(g, i));
+    page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+}
+
+static void write_arrows(struct page *p, const struct grid_plane *g)
+{
+    struct text t;
+    text_init(&t, p->arena);
+    for (size_t i = 0; i < g->grid->marks.n; i++) {
+        int from = g->grid->marks.at[i].arrow_from;
+        if (from >= 0)
+            text_printf(&t, "%s %s %s %s", t.n ? ";" : "Arrows:", label_of(g, (size_t)from),
+                        p->ascii ? "->" : "→", label_of(g, i));
+    }
+    if (t.n)
+        page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+}
+
+static bool is_clamped(const struct grid_plane *g, size_t i)
+{
+    return g->spots[i].placed && g->spots[i].clamped;
+}
+
+static bool is_never(const struct grid_plane *g, size_t i)
+{
+    return g->grid->marks.at[i].frequency == 0;
+}
+
+static bool is_harmless(const struct grid_plane *g, size_t i)
+{
+    return g->grid->marks.at[i].damage == 0;
+}
+
+/* Infinite, negative or undefined: no place on a log axis. */
+static bool is_nowhere(const struct grid_plane *g, size_t i)
+{
+    return !g->spots[i].placed && !is_never(g, i) && !is_harmless(g, i);
+}
+
+/* All lines below the table; an empty line parts them from it when there are any. */
+static void write_remarks(struct page *p, const struct grid_plane *g)
+{
+    size_t before = p->out->n;
+    page_blank(p);
+    size_t start = p->out->n;
+    for (size_t i = 0; i < g->grid->marks.n; i++)
+        if (g->spots[i].placed && g->spots[i].first == i && g->spots[i].company > 1)
+            write_company(p, g, i);
+    write_arrows(p, g);
+    write_list(p, g, "Beyond the axes, drawn at the edge of the picture:", is_clamped);
+    write_list(p, g, "Not in the picture, for it never happens:", is_never);
+    write_list(p, g, "Not in the picture, for it does no damage:", is_harmless);
+    write_list(p, g, "Not in the picture, for it has no place on the axes:", is_nowhere);
+    if (p->out->n == start) {
+        p->out->n = before;
+        p->out->at[before] = 0;
+    }
+}
+
+void grid_write_key(struct page *p, const struct grid_plane *g)
+{
+    if (g->grid->marks.n == 0) {
+        page_paragraph(p, "(no marks)", 0, INK_PLAIN);
+        return;
+    }
+    if (g->n_placed)
+        write_signs(p, g);
+    write_marks(p, g);
+    write_remarks(p, g);
+}

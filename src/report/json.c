@@ -1,0 +1,259 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Reports as JSON (RFC 8259): blocks that have a key, in their order, each row on
+ * a line of its own. Numbers are the shortest text that reads back as the same
+ * double. Characters that could harm a terminal are escaped, nothing is changed.
+ * Invariant: no number is infinite or undefined (asserted). Owns nothing. */
+#include <assert.h>
+#include <math.h>
+#include <string.h>
+
+#include "report/block.h"
+#include "report/clean.h"
+
+struct json {
+    struct text *out;
+    struct arena *arena;
+};
+
+/* Controls, bidirectional and invisible characters, line separators. */
+static bool is_hidden(unsigned c)
+{
+    return c < 0x20 || (c >= 0x7f && c <= 0x9f) || c == 0xad || c == 0x61c
+        || (c >= 0x200b && c <= 0x200f) || (c >= 0x2028 && c <= 0x202e)
+        || (c >= 0x2060 && c <= 0x206f) || c == 0xfeff;
+}
+
+/* The character at s (valid UTF-8), and its bytes. */
+static unsigned point_at(const char *s, size_t *n)
+{
+    const unsigned char *u = (const unsigned char *)s;
+    *n = u[0] < 0x80 ? 1 : u[0] < 0xe0 ? 2 : u[0] < 0xf0 ? 3 : 4;
+    unsigned c = *n == 1 ? u[0] : u[0] & (0x7fu >> *n);
+    for (size_t i = 1; i < *n; i++)
+        c = c << 6 | (u[i] & 0x3f);
+    return c;
+}
+
+static void put_string(struct json *j, const char *text)
+{
+    text_byte(j->out, '"');
+    for (const char *s = clean_valid(j->arena, text); *s;) {
+        size_t n;
+        unsigned c = point_at(s, &n);
+        if (c == '"' || c == '\\')
+            text_printf(j->out, "\\%c", (int)c);
+        else if (c == '\n')
+            text_add(j->out, "\\n");
+        else if (is_hidden(c))
+            text_printf(j->out, "\\u%04x", c);
+        else
+            text_addn(j->out, s, n);
+        s += n;
+    }
+    text_byte(j->out, '"');
+}
+
+/* "key": with the comma before it when it is not the first of its object. */
+static void put_key(struct json *j, const char *key, bool first)
+{
+    text_add(j->out, first ? "" : ", ");
+    put_string(j, key);
+    text_add(j->out, ": ");
+}
+
+static void put_member(struct json *j, const char *key, const char *text, bool first)
+{
+    put_key(j, key, first);
+    put_string(j, text);
+}
+
+static void put_double(struct json *j, double x)
+{
+    char buf[32];
+    assert(isfinite(x));
+    text_add(j->out, text_double(buf, x == 0 ? 0 : x));
+}
+
+static void put_value(struct json *j, double x, const char *unit, const char *figure)
+{
+    text_byte(j->out, '{');
+    put_key(j, "value", true);
+    put_double(j, x);
+    if (unit && *unit)
+        put_member(j, "unit", unit, false);
+    if (figure)
+        put_member(j, "figure", figure, false);
+}
+
+static void put_plain(struct json *j, const struct cell *c)
+{
+    if (c->type == CELL_EMPTY)
+        text_add(j->out, "null");
+    else if (c->type == CELL_YES)
+        text_add(j->out, c->number != 0 ? "true" : "false");
+    else
+        put_string(j, c->text);
+}
+
+/* Texts, dates, yes and no stand for themselves unless they carry a mark. */
+static void put_cell(struct json *j, const struct cell *c, const char *unit,
+                     enum number_style style)
+{
+    bool number = c->type == CELL_NUMBER || c->type == CELL_COUNT;
+    if (!number && !c->mark) {
+        put_plain(j, c);
+        return;
+    }
+    if (number) {
+        put_value(j, c->number, style == STYLE_PERCENT ? NULL : unit, c->figure);
+    } else {
+        text_byte(j->out, '{');
+        put_key(j, "value", true);
+        put_plain(j, c);
+    }
+    if (c->mark)
+        put_member(j, "mark", c->mark, false);
+    text_byte(j->out, '}');
+}
+
+static const struct cell *cell_of(const struct row *row, size_t i)
+{
+    static const struct cell empty = {.type = CELL_EMPTY};
+    return i < row->n ? &row->at[i] : &empty;
+}
+
+/* "name": [ and the elements, a line each, and ]. */
+static void open_list(struct json *j, const char *name)
+{
+    put_key(j, name, false);
+    text_byte(j->out, '[');
+}
+
+static void next_line(struct json *j, size_t i)
+{
+    text_add(j->out, i ? ",\n    " : "\n    ");
+}
+
+static void put_pairs(struct json *j, const struct block *b)
+{
+    open_list(j, "values");
+    for (size_t i = 0; i < b->rows.n; i++) {
+        const struct row *row = &b->rows.at[i];
+        const struct cell *value = cell_of(row, 1);
+        next_line(j, i);
+        text_byte(j->out, '{');
+        put_member(j, "name", cell_of(row, 0)->text, true);
+        put_key(j, "value", false);
+        put_cell(j, value, value->unit, value->style);
+        text_byte(j->out, '}');
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_columns(struct json *j, const struct block *b)
+{
+    open_list(j, "columns");
+    for (size_t i = 0; i < b->columns.n; i++) {
+        const struct column *c = &b->columns.at[i];
+        next_line(j, i);
+        text_byte(j->out, '{');
+        put_member(j, "key", c->key, true);
+        put_member(j, "head", c->head, false);
+        if (c->unit && *c->unit && c->style != STYLE_PERCENT)
+            put_member(j, "unit", c->unit, false);
+        text_byte(j->out, '}');
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_table(struct json *j, const struct block *b)
+{
+    put_columns(j, b);
+    open_list(j, "rows");
+    for (size_t i = 0; i < b->rows.n; i++) {
+        next_line(j, i);
+        text_byte(j->out, '{');
+        for (size_t k = 0; k < b->columns.n; k++) {
+            const struct column *c = &b->columns.at[k];
+            put_key(j, c->key, k == 0);
+            put_cell(j, cell_of(&b->rows.at[i], k), c->unit, c->style);
+        }
+        text_byte(j->out, '}');
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_mark(struct json *j, const struct grid *g, const struct grid_mark *m)
+{
+    text_byte(j->out, '{');
+    put_member(j, "label", m->label, true);
+    put_member(j, "name", m->name, false);
+    put_key(j, "frequency", false);
+    put_value(j, m->frequency, "1/a", m->frequency_figure);
+    text_byte(j->out, '}');
+    put_key(j, "damage", false);
+    put_value(j, m->damage, g->currency, m->damage_figure);
+    text_byte(j->out, '}');
+    if (m->arrow_from >= 0)
+        put_member(j, "from", g->marks.at[m->arrow_from].label, false);
+    text_byte(j->out, '}');
+}
+
+static void put_line(struct json *j, const struct grid *g, const struct grid_line *l)
+{
+    text_byte(j->out, '{');
+    put_member(j, "name", l->name, true);
+    put_key(j, "risk", false);
+    put_value(j, l->risk, arena_printf(j->arena, "%s/a", g->currency), NULL);
+    text_add(j->out, "}}");
+}
+
+static void put_grid(struct json *j, const struct grid *g)
+{
+    put_member(j, "currency", g->currency, false);
+    open_list(j, "marks");
+    for (size_t i = 0; i < g->marks.n; i++) {
+        next_line(j, i);
+        put_mark(j, g, &g->marks.at[i]);
+    }
+    text_byte(j->out, ']');
+    open_list(j, "lines");
+    for (size_t i = 0; i < g->lines.n; i++) {
+        next_line(j, i);
+        put_line(j, g, &g->lines.at[i]);
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_block(struct json *j, const struct block *b)
+{
+    static const char *const types[] = {"heading", "note", "pairs", "table", "grid"};
+    text_byte(j->out, '{');
+    put_member(j, "key", b->key, true);
+    put_member(j, "type", types[b->type], false);
+    if (b->title)
+        put_member(j, "title", b->title, false);
+    switch (b->type) {
+    case BLOCK_HEADING: break;
+    case BLOCK_NOTE: put_member(j, "text", b->text, false); break;
+    case BLOCK_PAIRS: put_pairs(j, b); break;
+    case BLOCK_TABLE: put_table(j, b); break;
+    case BLOCK_GRID: put_grid(j, b->grid); break;
+    }
+    text_byte(j->out, '}');
+}
+
+void report_write_json(struct text *out, const struct report *r)
+{
+    struct json j = {out, arena_child(out->arena)};
+    size_t n = 0;
+    text_add(out, "{\"blocks\": [");
+    for (size_t i = 0; i < r->blocks.n; i++) {
+        if (!r->blocks.at[i].key)
+            continue;
+        text_add(out, n++ ? ",\n  " : "\n  ");
+        put_block(&j, &r->blocks.at[i]);
+    }
+    text_add(out, "]}\n");
+    arena_free(j.arena);
+}

@@ -1,0 +1,153 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Numbers as text. The digits come from printf's exact conversion of the double;
+ * all the rest (place of the point, exponent, prefix) moves these digits about
+ * as text, so that no display adds a rounding error of its own. Only the digits
+ * are taken from printf, never the locale's point. Owns nothing. */
+#include "report/number.h"
+
+#include <math.h>
+#include <stdio.h>
+#include <stdlib.h>
+#include <string.h>
+
+enum { USUAL_DIGITS = 3, MOST_DIGITS = 12 };
+
+/* |x| = d.ddd * 10^exponent, zeros at the end left out. */
+struct decimal {
+    char digits[MOST_DIGITS + 1];
+    int n, exponent;
+};
+
+static struct decimal decimal_of(double x, int n)
+{
+    char raw[64];
+    snprintf(raw, sizeof raw, "%.*e", n - 1, fabs(x));
+    char *e = strchr(raw, 'e');
+    struct decimal d = {.n = n, .exponent = atoi(e + 1)};
+    d.digits[0] = raw[0];
+    memcpy(d.digits + 1, e - (n - 1), (size_t)n - 1);
+    while (d.n > 1 && d.digits[d.n - 1] == '0')
+        d.n--;
+    return d;
+}
+
+static bool is_one(const struct decimal *d)
+{
+    return d->n == 1 && d->digits[0] == '1' && d->exponent == 0;
+}
+
+/* A chance below 1 never reads as 1 (down to a complement of 1e-12): 0.9999, not 1. */
+static struct decimal decimal_in_style(double x, enum number_style style)
+{
+    struct decimal d = decimal_of(x, USUAL_DIGITS);
+    bool chance = style == STYLE_PROBABILITY || style == STYLE_PERCENT;
+    for (int n = USUAL_DIGITS + 1; chance && x < 1 && is_one(&d) && n <= MOST_DIGITS; n++)
+        d = decimal_of(x, n);
+    return d;
+}
+
+/* Rounded exponents from `low` to below `high` are written without an exponent. */
+static bool is_fixed(int exponent, enum number_style style)
+{
+    int low = style == STYLE_FREQUENCY ? -1 : -2;
+    int high = style == STYLE_MONEY ? 9 : 5;
+    return exponent >= low && exponent < high;
+}
+
+static char *put_digits(char *to, const struct decimal *d, int from, int until)
+{
+    for (int i = from; i < until; i++)
+        *to++ = i < 0 || i >= d->n ? '0' : d->digits[i];
+    return to;
+}
+
+static char *put_fixed(char *to, const struct decimal *d)
+{
+    if (d->exponent < 0)
+        *to++ = '0';
+    else
+        to = put_digits(to, d, 0, d->exponent + 1);
+    if (d->n > d->exponent + 1) {
+        *to++ = '.';
+        to = put_digits(to, d, d->exponent + 1, d->n);
+    }
+    return to;
+}
+
+static char *put_scientific(char *to, const struct decimal *d)
+{
+    struct decimal mantissa = *d;
+    mantissa.exponent = 0;
+    to = put_fixed(to, &mantissa);
+    return to + sprintf(to, "e%d", d->exponent);
+}
+
+static char *put_special(char *buf, double x)
+{
+    return strcpy(buf, isnan(x) ? "undefined" : x < 0 ? "-infinite" : x > 0 ? "infinite" : "0");
+}
+
+char *number_scaled(char *buf, double x, enum number_style style, int shift)
+{
+    if (!isfinite(x) || x == 0)
+        return put_special(buf, x);
+    struct decimal d = decimal_in_style(x, style);
+    d.exponent -= shift;
+    char *to = buf;
+    if (x < 0)
+        *to++ = '-';
+    to = is_fixed(d.exponent, style) ? put_fixed(to, &d) : put_scientific(to, &d);
+    *to = 0;
+    return buf;
+}
+
+char *number_text(char *buf, double x, enum number_style style)
+{
+    return number_scaled(buf, x, style, style == STYLE_PERCENT ? -2 : 0);
+}
+
+int number_exponent(double x)
+{
+    return decimal_of(x, USUAL_DIGITS).exponent;
+}
+
+int money_shift(int largest, int smallest)
+{
+    int shift = largest < 3 ? 0 : largest < 6 ? 3 : largest < 9 ? 6 : 9;
+    for (int lower = shift; lower >= 0 && largest - lower < 5; lower -= 3)
+        if (smallest - lower >= -2)
+            return lower;
+    return shift;
+}
+
+const char *money_prefix(int shift)
+{
+    static const char *const prefixes[] = {"", "k", "M", "G"};
+    return prefixes[shift / 3];
+}
+
+const char *money_text(struct arena *a, double x, const char *unit)
+{
+    char buf[32];
+    int shift = 0;
+    if (isfinite(x) && x != 0 && *unit)
+        shift = money_shift(number_exponent(x), number_exponent(x));
+    number_scaled(buf, x, STYLE_PLAIN, shift);
+    return *unit ? arena_printf(a, "%s %s%s", buf, money_prefix(shift), unit) : arena_str(a, buf);
+}
+
+char *return_period_text(char *buf, double per_year)
+{
+    char number[32];
+    if (per_year == 0)
+        return strcpy(buf, "never");
+    if (isnan(per_year) || per_year < 0)
+        return strcpy(buf, "undefined");
+    if (per_year >= 1)
+        sprintf(buf, "%s per a", number_text(number, per_year, STYLE_PLAIN));
+    else if (isinf(1 / per_year))
+        strcpy(buf, "1 in over 1e308 a");
+    else
+        sprintf(buf, "1 in %s a", number_text(number, 1 / per_year, STYLE_PLAIN));
+    return buf;
+}

@@ -1,0 +1,27 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Numbers as the text writer lays them out: three significant digits of the exact
+ * double, rounded half to even as printf rounds, in any power of ten. */
+#ifndef REPORT_NUMBER_H
+#define REPORT_NUMBER_H
+
+#include "report/block.h"
+
+/* x / 10^shift in the given style (a percentage is not scaled here; its caller
+ * gives the shift -2). Scaling moves the decimal point only: nothing is rounded
+ * twice. buf: 32 bytes. */
+char *number_scaled(char *buf, double x, enum number_style style, int shift);
+
+/* The power of ten of x once rounded to three digits: 999.7 has 3. x is finite
+ * and not zero. */
+int number_exponent(double x);
+
+/* The shift (0, 3, 6 or 9) for a column of money whose largest and smallest
+ * absolute values, zeros left out, have these exponents. The largest number
+ * decides, but the prefix is lowered where this spares the smallest one its
+ * exponent and leaves the largest below 1e5. */
+int money_shift(int largest, int smallest);
+
+/* "", "k", "M" or "G". */
+const char *money_prefix(int shift);
+
+#endif
