@@ -1,0 +1,150 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* libohmen: a risk register for the protection of electrical networks.
+ *
+ * A *register* is one file. Documents (YAML, CSV) are imported into it, each import
+ * one entry of its journal. From what it holds, as of any entry, reports are computed:
+ * hazards with their frequency, outcomes, damage and risk; decisions with their
+ * options weighed against doing nothing; the grid of frequency and damage; and the
+ * derivation of any single figure. A report is made of neutral blocks and is written
+ * as text, JSON or CSV.
+ *
+ *     #include <ohmen/ohmen.h>
+ *
+ *     ohmen_error error = OHMEN_ERROR_INIT;
+ *     ohmen_register *reg = NULL;
+ *     ohmen_report *report = NULL;
+ *     ohmen_query query = ohmen_query_defaults();
+ *
+ *     if (ohmen_open("harbour.ohmen", OHMEN_READ, &reg, &error) == OHMEN_OK &&
+ *         ohmen_hazards(reg, &query, &report, &error) == OHMEN_OK) {
+ *         ohmen_layout layout = ohmen_layout_defaults();
+ *         fputs(ohmen_report_text(report, &layout), stdout);
+ *     } else {
+ *         fprintf(stderr, "%s\n", error.text);
+ *     }
+ *     ohmen_report_free(report);
+ *     ohmen_close(reg);
+ *
+ * The library never prints, never exits, reads no environment but the clock seam
+ * (OHMEN_CLOCK), and never calls setlocale. A register handle belongs to one thread at
+ * a time; different handles are independent. Texts are UTF-8. Texts and reports are
+ * valid until their owner is freed. All _free and _close functions take NULL. */
+#ifndef OHMEN_OHMEN_H
+#define OHMEN_OHMEN_H
+
+#include <stdbool.h>
+#include <stddef.h>
+#include <stdint.h>
+
+#include "ohmen/error.h"
+
+/* "0.1.0" */
+const char *ohmen_version(void);
+
+/* --- registers --- */
+
+typedef struct ohmen_register ohmen_register;
+typedef enum ohmen_mode { OHMEN_READ, OHMEN_WRITE } ohmen_mode;
+
+/* Creates an empty register file; an existing file is refused (OHMEN_IO). */
+ohmen_status ohmen_create(const char *path, ohmen_error *e);
+
+/* OHMEN_REGISTER for what is no register, was written by a newer ohmen, or is
+ * damaged. */
+ohmen_status ohmen_open(const char *path, ohmen_mode mode, ohmen_register **out, ohmen_error *e);
+void ohmen_close(ohmen_register *r);
+
+/* --- reports --- */
+
+typedef struct ohmen_report ohmen_report;
+
+typedef struct ohmen_layout {
+    unsigned width; /* columns, 60 .. 200; others are clamped; default 100 */
+    bool ascii;     /* default false */
+    bool colour;    /* default false */
+} ohmen_layout;
+ohmen_layout ohmen_layout_defaults(void);
+
+/* The report as text for people, as one JSON object, and its tables as CSV. Owned by
+ * the report; each call makes a new one. NULL when out of memory. */
+const char *ohmen_report_text(ohmen_report *r, const ohmen_layout *layout);
+const char *ohmen_report_json(ohmen_report *r);
+const char *ohmen_report_csv(ohmen_report *r);
+void ohmen_report_free(ohmen_report *r);
+
+/* Diagnostics that came with the report (an import that was refused):
+ * "file:line:column: sentence". NULL behind the last. */
+const char *ohmen_report_diagnostic(const ohmen_report *r, size_t i);
+
+/* --- what a report is about --- */
+
+typedef struct ohmen_query {
+    const char *as_of;       /* what the journal knew: an entry's number, a date (end of that
+                                day, UTC) or a UTC second; NULL: the newest */
+    const char *perspective; /* whose damage counts; NULL: the register's own choice, "all":
+                                every category */
+    const char *site;        /* only hazards at this site and the sites in it; NULL: all */
+} ohmen_query;
+ohmen_query ohmen_query_defaults(void);
+
+/* --- changing a register --- */
+
+typedef struct ohmen_import_settings {
+    const char *const *files; /* documents (*.yaml, *.yml, "-" is standard input) and lists of
+                                 observations (*.csv) */
+    size_t n_files;
+    const char *author; /* who; required unless dry_run */
+    const char *reason; /* why; required unless dry_run */
+    bool dry_run;       /* preview: what would be added, changed, removed; stores nothing */
+} ohmen_import_settings;
+
+/* Reads all files, checks the register that would result, and stores the changes as
+ * one entry, or nothing. The report lists what was (or would be) added, changed field
+ * by field, and removed. OHMEN_INPUT: *out is a report too, with the diagnostics of
+ * all files (it is the one exception to outputs being untouched on failure). */
+ohmen_status ohmen_import(ohmen_register *r, const ohmen_import_settings *s, ohmen_report **out,
+                          ohmen_error *e);
+
+/* The register as documents: YAML of all objects, or CSV of all observations. Imported
+ * into an empty register they give the same content hash. *text is owned by *out. */
+typedef enum ohmen_export_part { OHMEN_EXPORT_OBJECTS, OHMEN_EXPORT_OBSERVATIONS } ohmen_export_part;
+ohmen_status ohmen_export(ohmen_register *r, const ohmen_query *q, ohmen_export_part part,
+                          ohmen_report **out, const char **text, ohmen_error *e);
+
+/* A copy while the register is in use; an existing file is refused. */
+ohmen_status ohmen_backup(ohmen_register *r, const char *path, ohmen_error *e);
+
+/* --- reading a register --- */
+
+/* Each hazard: frequency, damaging frequency, mean damage, risk, rank. */
+ohmen_status ohmen_hazards(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                           ohmen_error *e);
+/* Everything of one kind ("elements"), as a table. kind: a section of the documents. */
+ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
+                        ohmen_report **out, ohmen_error *e);
+/* One object of any kind with all that it says; a hazard with the numbers of its event
+ * tree, an element or a scheme with where it is used. */
+ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,
+                        ohmen_report **out, ohmen_error *e);
+/* A decision: its options and their combinations weighed against doing nothing. */
+ohmen_status ohmen_weigh(ohmen_register *r, const ohmen_query *q, const char *decision,
+                         ohmen_report **out, ohmen_error *e);
+/* The grid of all hazards, or of one decision with arrows (decision not NULL). */
+ohmen_status ohmen_grid(ohmen_register *r, const ohmen_query *q, const char *decision,
+                        ohmen_report **out, ohmen_error *e);
+/* The derivation of a figure ("H-BUS1.risk"), down to `depth` levels (0: all). */
+ohmen_status ohmen_explain(ohmen_register *r, const ohmen_query *q, const char *figure,
+                           unsigned depth, ohmen_report **out, ohmen_error *e);
+/* The whole register as one document. */
+ohmen_status ohmen_report_all(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                              ohmen_error *e);
+/* The journal: all entries, or the versions of one object field by field. */
+ohmen_status ohmen_history(ohmen_register *r, const char *id, ohmen_report **out, ohmen_error *e);
+/* Proof of the file: hashes, chain, derived tables. OHMEN_REGISTER with a report of
+ * findings (*out is set) when anything is wrong. */
+ohmen_status ohmen_verify(ohmen_register *r, ohmen_report **out, ohmen_error *e);
+
+/* JSON Schema of the documents (static text). */
+const char *ohmen_document_schema(void);
+
+#endif

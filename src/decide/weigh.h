@@ -1,0 +1,78 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Weighing the options of a decision against doing nothing.
+ *
+ * Alternatives are doing nothing, each option that is possible alone, and every
+ * combination of options in which none excludes another, all that one requires are
+ * there, and no two contradict. With more than WEIGH_ALL options only pairs are combined.
+ *
+ * Conventions (any engineering economy text; docs/methods.md works an example):
+ * - time runs in years from register.start (1 January of the year of the prices where
+ *   it is left out); a date is its calendar years from there plus days / 365;
+ * - an investment is paid at the start of its year: (1 + r)^-floor(t);
+ * - damage and running cost are paid in the middle of each year;
+ * - an option changes the register from its in-service date until the end of its life or of
+ *   the horizon; before and behind that the register is as the other options leave it;
+ * - damage is summed over every hazard that any option of the decision reaches, and
+ *   the hazards in its focus: the same for all alternatives. */
+#ifndef DECIDE_WEIGH_H
+#define DECIDE_WEIGH_H
+
+#include "figure/figure.h"
+
+#define WEIGH_ALL 8 /* options of which all combinations are weighed: 256 alternatives */
+
+struct alternative {
+    const char *name; /* "do-nothing", "FIT-87B", "FIT-87B+TEST" */
+    size_t n;
+    const char *const *options;    /* in byte order */
+    const struct variant *variant; /* all of them in service */
+    figure_id present_damage, present_cost, total;
+    figure_id net, benefit, ratio;   /* FIGURE_NONE for doing nothing; ratio also without cost */
+    const struct compiled **hazards; /* under `variant`, in the order of weighing.hazards */
+    size_t rank;                     /* 1 is best; set by weigh_rank */
+};
+
+struct weighed_hazard {
+    const char *id;
+    bool in_focus;
+    const struct compiled *now;
+};
+
+/* Why a set of options is no alternative. */
+struct not_possible {
+    const char *options; /* "A+B" */
+    const char *why;
+};
+
+struct weighing {
+    const char *id;
+    const struct decision *decision;
+    const struct compiled *unit; /* the decision's own section */
+    double horizon;              /* years */
+    ARRAY(struct weighed_hazard) hazards;
+    ARRAY(struct alternative) alternatives; /* doing nothing first, then by size and name */
+    ARRAY(struct not_possible) left_out;
+    bool only_pairs;
+    size_t *order; /* indices of alternatives, best first; set by weigh_rank */
+};
+
+/* Compiles a decision. OHMEN_UNKNOWN when there is none of that id, OHMEN_COMPUTE when it is
+ * a tree, which this version stores but does not evaluate. A decision is compiled once
+ * for a `struct figures`. */
+ohmen_status weigh_compile(struct figures *f, const char *decision, struct weighing **out,
+                           ohmen_error *e);
+
+/* Ranks by net present value, best first (doing nothing is worth 0); ties by name.
+ * figures_evaluate has been called. */
+void weigh_rank(struct figures *f, struct weighing *w);
+
+/* Years from the start of the horizon to a date (may be negative). */
+double weigh_years(const struct register_settings *s, day d);
+
+/* First day of the horizon. */
+day weigh_start(const struct register_settings *s);
+
+/* Finds any figure, those of decisions and options among them. */
+ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e);
+
+#endif

@@ -1,0 +1,354 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Compiling values, rates, types and elements; expressions and quantities as nodes.
+ *
+ * Sections do not nest: whatever an object reads is compiled before its own section is
+ * opened. */
+#include "figure/compile.h"
+
+#include <math.h>
+
+#include "math/elementary.h"
+
+/* Objects may depend on objects this deep. */
+#define COMPILE_DEPTH 400
+
+/* --- nodes --- */
+
+node_id compile_const(struct building *b, double value, struct dim d, const char *text)
+{
+    struct figures *f = b->figures;
+    node_id n = graph_const(f->graph, value, d);
+    while (f->literals.n <= n)
+        *array_push(f->arena, &f->literals) = NULL;
+    if (!f->literals.at[n])
+        f->literals.at[n] = text;
+    return n;
+}
+
+static node_id compile_call(struct building *b, enum graph_op op, const struct expr *e)
+{
+    node_id *args = NEW_ARRAY(b->figures->arena, e->n, node_id);
+    for (size_t i = 0; i < e->n; i++)
+        args[i] = compile_expr(b, e->args[i]);
+    return graph_op(b->figures->graph, op, e->n, args);
+}
+
+static node_id compile_frequency(struct building *b, const char *hazard)
+{
+    const struct hazard_exports *x = compiled_of(b, hazard)->exports;
+    return b->figures->list.at[x->frequency].node;
+}
+
+node_id compile_expr(struct building *b, const struct expr *e)
+{
+    switch (e->op) {
+    case EXPR_LITERAL: return compile_const(b, e->value, e->dim, e->text);
+    case EXPR_NAME:
+    case EXPR_FAILS: return compiled_main_node(b, e->name);
+    case EXPR_FREQUENCY: return compile_frequency(b, e->name);
+    case EXPR_CLEARANCE: return compile_expr(b, b->clearance);
+    case EXPR_ADD: return compile_call(b, OP_ADD, e);
+    case EXPR_SUBTRACT: return compile_call(b, OP_SUBTRACT, e);
+    case EXPR_MULTIPLY: return compile_call(b, OP_MULTIPLY, e);
+    case EXPR_DIVIDE: return compile_call(b, OP_DIVIDE, e);
+    case EXPR_NEGATE: return compile_call(b, OP_NEGATE, e);
+    case EXPR_POWER: return compile_call(b, OP_POWER, e);
+    case EXPR_MIN: return compile_call(b, OP_MIN, e);
+    case EXPR_MAX: return compile_call(b, OP_MAX, e);
+    case EXPR_EXP: return compile_call(b, OP_EXP, e);
+    case EXPR_LOG: return compile_call(b, OP_LOG, e);
+    case EXPR_SQRT: return compile_call(b, OP_SQRT, e);
+    case EXPR_LOOKUP: return compile_call(b, OP_LOOKUP, e);
+    case EXPR_WAS:
+    case EXPR_UNWANTED: break;
+    }
+    return NODE_NONE; /* refused before: quantity_unsupported */
+}
+
+node_id compile_quantity(struct building *b, const struct quantity *q)
+{
+    struct figures *f = b->figures;
+    if (q->shape == SHAPE_EXPRESSION)
+        return compile_expr(b, q->expr);
+    *array_push(f->arena, &f->inputs) = q;
+    return graph_input(f->graph, (uint32_t)(f->inputs.n - 1), quantity_mean(q), q->dim);
+}
+
+static const char *expr_reads(struct arena *a, const struct expr *e)
+{
+    struct text t;
+    text_init(&t, a);
+    expr_write(&t, e);
+    return text_str(&t);
+}
+
+const char *quantity_reads(struct figures *f, const struct quantity *q)
+{
+    return q->shape == SHAPE_EXPRESSION ? expr_reads(f->arena, q->expr) : q->text;
+}
+
+struct unsupported {
+    struct arena *arena;
+    const char *text;
+};
+
+static void look_for_unsupported(void *ctx, const struct expr *e)
+{
+    struct unsupported *u = ctx;
+    if (e->op == EXPR_UNWANTED && !u->text)
+        u->text = arena_printf(u->arena, "unwanted(%s)", e->name);
+}
+
+const char *quantity_unsupported(struct arena *a, const struct quantity *q)
+{
+    struct unsupported u = {a, NULL};
+    if (q->shape == SHAPE_EXPRESSION && q->expr)
+        expr_walk(q->expr, look_for_unsupported, &u);
+    return u.text;
+}
+
+/* --- objects --- */
+
+static ohmen_status refuse_unsupported(struct figures *f, const struct object *o,
+                                       const struct quantity *q, const char *key, ohmen_error *e)
+{
+    const char *what = quantity_unsupported(f->arena, q);
+    if (!what)
+        return OHMEN_OK;
+    return error_set(e, OHMEN_COMPUTE,
+                     "%s.%s uses %s, which this version stores but does not evaluate", o->id, key,
+                     what);
+}
+
+/* A leaf or an expression as the main figure of its unit. */
+static struct compiled *compile_main(struct figures *f, const struct variant *v, const struct object *o,
+                                 enum property p, const struct quantity *q, const char *source)
+{
+    struct building b;
+    compiled_begin(f, v, o, o->id, &b);
+    node_id n = compile_quantity(&b, q);
+    b.unit->main = compiled_add(&b, p, NULL, NULL, n, source, quantity_reads(f, q));
+    compiled_end(&b);
+    return b.unit;
+}
+
+static ohmen_status compile_value(struct figures *f, const struct variant *v,
+                                  const struct object *o, struct compiled **out, ohmen_error *e)
+{
+    const struct value *value = o->data;
+    const struct quantity *q = value->is ? value->is : value->varies;
+    ohmen_status status = refuse_unsupported(f, o, q, "value", e);
+    if (status == OHMEN_OK)
+        *out = compile_main(f, v, o, PROPERTY_VALUE, q, value->source);
+    return status;
+}
+
+/* The distribution that a prior states, by the keys that it gives. NULL: a form that this
+ * version does not evaluate. Lognormal with mean m: median m exp(-s^2/2), s = ln EF / z95. */
+static struct quantity *prior_distribution(struct arena *a, const struct prior *p)
+{
+    const double z95 = 1.6448536269514722;
+    struct quantity *q = NEW(a, struct quantity);
+    q->times = 1;
+    if (p->mean && p->weight) {
+        *q = (struct quantity){.shape = SHAPE_GAMMA,
+                               .p = {expr_constant(p->mean->expr), expr_constant(p->weight->expr)}};
+        q->text = arena_printf(a, "gamma with mean %s, weight %s", expr_reads(a, p->mean->expr),
+                               expr_reads(a, p->weight->expr));
+    } else if (p->median && p->error_factor) {
+        *q = (struct quantity){
+            .shape = SHAPE_LOGNORMAL,
+            .p = {expr_constant(p->median->expr), expr_constant(p->error_factor->expr), NAN}};
+        q->text = arena_printf(a, "median %s, error factor %s", expr_reads(a, p->median->expr),
+                               expr_reads(a, p->error_factor->expr));
+    } else if (p->mean && p->error_factor) {
+        double ef = expr_constant(p->error_factor->expr), s = math_log(ef) / z95;
+        *q = (struct quantity){.shape = SHAPE_LOGNORMAL,
+                               .p = {expr_constant(p->mean->expr) * math_exp(-s * s / 2), ef, NAN}};
+        q->text = arena_printf(a, "lognormal with mean %s, error factor %s",
+                               expr_reads(a, p->mean->expr), expr_reads(a, p->error_factor->expr));
+    } else {
+        return NULL;
+    }
+    q->times = 1;
+    q->dim = p->mean ? p->mean->dim : p->median->dim;
+    return q;
+}
+
+/* constrained (non-informative with a mean, shape 1/2: NASA/SP-2009-569) and fixed. */
+static struct quantity *prior_by_form(struct arena *a, const struct prior *p)
+{
+    const char *form = p->form < 0 ? "" : prior_forms[p->form];
+    if (!p->mean || p->weight || p->error_factor || p->p5 || p->p95 || p->p50 || p->p99)
+        return prior_distribution(a, p);
+    if (text_equal(form, "fixed"))
+        return p->mean;
+    if (!text_equal(form, "constrained"))
+        return NULL;
+    struct quantity *q = NEW(a, struct quantity);
+    *q = (struct quantity){.shape = SHAPE_GAMMA,
+                           .p = {expr_constant(p->mean->expr), 0.5},
+                           .times = 1,
+                           .dim = p->mean->dim};
+    q->text =
+        arena_printf(a, "constrained non-informative with mean %s", expr_reads(a, p->mean->expr));
+    return q;
+}
+
+static ohmen_status compile_rate(struct figures *f, const struct variant *v, const struct object *o,
+                                 struct compiled **out, ohmen_error *e)
+{
+    const struct rate *r = o->data;
+    const struct quantity *q = r->is ? r->is : prior_by_form(f->arena, r->prior);
+    if (!q)
+        return error_set(
+            e, OHMEN_COMPUTE,
+            "the prior of the rate \"%s\" is stored but not evaluated by this version, which "
+            "knows a mean with a weight, a mean or a median with an error factor, and the "
+            "forms constrained and fixed with a mean",
+            o->id);
+    ohmen_status status = refuse_unsupported(f, o, q, "is", e);
+    const char *source = r->prior && r->prior->source ? r->prior->source : r->source;
+    if (status == OHMEN_OK)
+        *out = compile_main(f, v, o, PROPERTY_RATE, q, source);
+    return status;
+}
+
+/* Beta posterior of counts: a0 + failures, b0 + successes (conjugate; NASA/SP-2009-569). */
+static const struct quantity *record_quantity(struct arena *a, const struct demand_record *r)
+{
+    if (r->is)
+        return r->is;
+    double prior = text_equal(demand_priors[r->prior], "jeffreys") ? 0.5 : 1;
+    struct quantity *q = NEW(a, struct quantity);
+    *q = (struct quantity){
+        .shape = SHAPE_BETA,
+        .p = {prior + (double)r->failures, prior + (double)(r->demands - r->failures)},
+        .times = 1};
+    q->text = arena_printf(a, "%s prior with %lld failures in %lld demands",
+                           demand_priors[r->prior], (long long)r->failures, (long long)r->demands);
+    return q;
+}
+
+static ohmen_status compile_record(struct figures *f, const struct variant *v,
+                                   const struct object *o, const struct demand_record *r,
+                                   const char *source, struct compiled **out, ohmen_error *e)
+{
+    const struct quantity *q = record_quantity(f->arena, r);
+    ohmen_status status = refuse_unsupported(f, o, q, "per-demand", e);
+    if (status == OHMEN_OK)
+        *out = compile_main(f, v, o, PROPERTY_FAILS, q, r->source ? r->source : source);
+    return status;
+}
+
+/* An element without data of its own is its type. */
+static ohmen_status compile_element(struct figures *f, const struct variant *v,
+                                    const struct object *o, struct compiled **out, ohmen_error *e)
+{
+    const struct element *x = o->data;
+    if (x->per_demand)
+        return compile_record(f, v, o, x->per_demand, x->source, out, e);
+    const struct element_type *t = x->type ? model_get(v->model, KIND_TYPE, x->type) : NULL;
+    if (!t || !t->per_demand)
+        return error_set(
+            e, OHMEN_COMPUTE,
+            "the element \"%s\" has no probability of failure on demand (\"per-demand\"), nor "
+            "has its type; failures in time are stored but not evaluated by this version",
+            o->id);
+    struct building b;
+    compiled_begin(f, v, o, o->id, &b);
+    b.unit->main =
+        compiled_add(&b, PROPERTY_FAILS, NULL, NULL, compiled_main_node(&b, x->type), NULL, NULL);
+    compiled_end(&b);
+    *out = b.unit;
+    return OHMEN_OK;
+}
+
+static ohmen_status compile_type(struct figures *f, const struct variant *v, const struct object *o,
+                                 struct compiled **out, ohmen_error *e)
+{
+    const struct element_type *t = o->data;
+    if (t->per_demand)
+        return compile_record(f, v, o, t->per_demand, t->source, out, e);
+    struct building b; /* a type without data: nothing to export */
+    compiled_begin(f, v, o, o->id, &b);
+    compiled_end(&b);
+    *out = b.unit;
+    (void)e;
+    return OHMEN_OK;
+}
+
+/* --- references first --- */
+
+/* Schemes export nothing to others: their elements do. */
+static ohmen_status compile_one_reference(struct figures *f, const struct variant *v,
+                                          const struct object *to, ohmen_error *e)
+{
+    const struct compiled *unused;
+    if (f->depth >= COMPILE_DEPTH)
+        return error_set(e, OHMEN_COMPUTE, "\"%s\" depends on others more than %d deep", to->id,
+                         COMPILE_DEPTH);
+    f->depth++;
+    ohmen_status status = to->kind == KIND_SCHEME ? compile_references(f, v, to, e)
+                                                  : figures_compile(f, v, to->id, &unused, e);
+    f->depth--;
+    return status;
+}
+
+ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
+                                ohmen_error *e)
+{
+    for (size_t i = 0; i < o->refs.n; i++) {
+        const struct reference *r = &o->refs.at[i];
+        const struct object *to = model_find(v->model, r->id);
+        if (r->trace || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
+            to->kind == KIND_COMMON_CAUSE)
+            continue;
+        ohmen_status status = compile_one_reference(f, v, to, e);
+        if (status != OHMEN_OK)
+            return status;
+    }
+    return OHMEN_OK;
+}
+
+static ohmen_status compile_object(struct figures *f, const struct variant *v,
+                                   const struct object *o, struct compiled **out, ohmen_error *e)
+{
+    ohmen_status status = compile_references(f, v, o, e);
+    if (status != OHMEN_OK)
+        return status;
+    switch (o->kind) {
+    case KIND_VALUE: return compile_value(f, v, o, out, e);
+    case KIND_RATE: return compile_rate(f, v, o, out, e);
+    case KIND_TYPE: return compile_type(f, v, o, out, e);
+    case KIND_ELEMENT: return compile_element(f, v, o, out, e);
+    case KIND_SCHEME: return compile_scheme(f, v, o, out, e);
+    case KIND_HAZARD: return compile_hazard(f, v, o, out, e);
+    default:
+        return error_set(e, OHMEN_COMPUTE, "\"%s\" is %s, which has no figures in this version",
+                         o->id, kinds_words(f->arena, KIND_BIT(o->kind)));
+    }
+}
+
+ohmen_status figures_compile(struct figures *f, const struct variant *v, const char *id,
+                             const struct compiled **out, ohmen_error *e)
+{
+    const struct variant *projected;
+    ohmen_status status = variant_project(f, v, id, &projected, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct building b = {.figures = f, .variant = projected};
+    const struct compiled *known = compiled_of(&b, id);
+    if (known) {
+        *out = known;
+        return OHMEN_OK;
+    }
+    const struct object *o = model_find(projected->model, id);
+    if (!o)
+        return error_set(e, OHMEN_UNKNOWN, "there is no \"%s\"", id);
+    struct compiled *u;
+    status = compile_object(f, projected, o, &u, e);
+    if (status == OHMEN_OK)
+        *out = u;
+    return status;
+}

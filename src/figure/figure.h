@@ -1,0 +1,202 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Figures: the named numbers of a register, compiled into one calculation graph.
+ *
+ * A figure is (object, property, qualifiers, variant). Its name is made on demand:
+ *     OBJECT.PROPERTY[.QUALIFIER[.QUALIFIER]][@OPTION[+OPTION...]]
+ * docs/figures.md lists the properties. Behind @ stands the variant *projected* on the
+ * object: only those options that change something that the object depends on. So a
+ * figure that no change reaches is the base figure, and is computed once.
+ *
+ * Every object is compiled into a section of its own, once for each projected variant,
+ * when it is first asked for. After compiling, figures_evaluate fills in the values. */
+#ifndef FIGURE_FIGURE_H
+#define FIGURE_FIGURE_H
+
+#include "eval/eval.h"
+#include "graph/diagram.h"
+#include "model/model.h"
+
+/* Properties, the word in names, and what it is. */
+#define FIGURE_PROPERTIES(X)                                                                       \
+    X(VALUE, "value", "a named value")                                                             \
+    X(RATE, "rate", "a rate per exposure and time")                                                \
+    X(FAILS, "fails", "probability of failure to operate on demand")                               \
+    X(FREQUENCY, "frequency", "how often a hazard, or one of its outcomes, occurs")                \
+    X(END, "end", "probability of one end of the event tree, given the hazard")                    \
+    X(PROBABILITY, "probability", "probability of an outcome, given the hazard")                   \
+    X(SHARE, "share", "share of a branch, or of the faults that a function sees")                  \
+    X(CLEARANCE, "clearance-time", "clearance time of a row")                                      \
+    X(DAMAGE, "damage",                                                                            \
+      "mean damage of an outcome, of one item of it, or of a hazard's "                            \
+      "damaging outcomes")                                                                         \
+    X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
+    X(RISK, "risk", "frequency times damage, of an outcome, a hazard, or the register")            \
+    X(INVEST, "invest", "investment of an option")                                                 \
+    X(RUNNING, "running", "running cost of an option per year")                                    \
+    X(DISCOUNT, "discount", "interest per year")                                                   \
+    X(PRESENT_DAMAGE, "present-damage", "present value of the damage over the horizon")            \
+    X(PRESENT_COST, "present-cost", "present value of investment and running cost")                \
+    X(TOTAL, "total", "present value of damage and cost together")                                 \
+    X(NET, "net-present-value", "what an alternative is worth against doing nothing")              \
+    X(BENEFIT, "benefit", "present value of the damage that an alternative avoids")                \
+    X(RATIO, "benefit-cost-ratio", "avoided damage over cost, as present values")
+
+enum property {
+#define X(property, word, help) PROPERTY_##property,
+    FIGURE_PROPERTIES(X)
+#undef X
+        PROPERTY_COUNT
+};
+extern const struct property_info {
+    const char *word, *help;
+} properties[PROPERTY_COUNT];
+
+typedef uint32_t figure_id;
+#define FIGURE_NONE UINT32_MAX
+
+struct figure {
+    uint32_t unit; /* index of the compiled object in `units` */
+    enum property property;
+    const char *q1, *q2; /* qualifiers or NULL */
+    node_id node;
+    const char *source; /* id of the source, or NULL */
+    const char *text;   /* of a leaf: how it was written ("90 % within ..."), or NULL */
+};
+
+/* A set of options and the model that they make. */
+struct variant {
+    size_t n;
+    const char *const *options; /* in byte order */
+    const struct model *model;
+    struct strmap *reached; /* for each option: ids of what its change reaches */
+};
+
+/* One compiled object. */
+struct compiled {
+    const struct object *object; /* of the variant; NULL for a decision's own section */
+    const char *id;
+    const struct variant *variant; /* projected */
+    section_id section;
+    figure_id first;
+    size_t n;       /* figures */
+    void *exports;  /* struct hazard_exports for hazards */
+    figure_id main; /* value, rate, fails, risk */
+};
+
+struct figures {
+    struct arena *arena;
+    const struct model *base;
+    const char *perspective;        /* NULL: every category */
+    const struct names *categories; /* of the perspective; NULL: every category */
+    struct graph *graph;
+    struct eval *eval;
+    ARRAY(struct figure) list;
+    ARRAY(struct compiled *) units;
+    struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
+    struct strmap variants;    /* "A+B" -> struct variant */
+    struct strmap used_by;     /* id -> struct objects: what refers to it, in the base */
+    ARRAY(const struct quantity *) inputs;
+    ARRAY(figure_id) of_node;     /* first figure of a node */
+    ARRAY(const char *) literals; /* text of a CONST node, or NULL */
+    unsigned depth;
+};
+
+/* perspective: "all" or NULL for every category; otherwise it must exist
+ * (OHMEN_UNKNOWN with the nearest name). */
+ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
+                         struct figures **out, ohmen_error *e);
+
+/* The variant of a set of options (any order, no repetition). OHMEN_COMPUTE when they
+ * contradict or leave the register wrong: the message is the first diagnostic. */
+ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
+                             const struct variant **out, ohmen_error *e);
+
+/* Does the variant change anything that this object depends on? */
+bool variant_reaches(const struct variant *v, const char *id);
+
+/* Compiles an object (value, rate, type, element, scheme, hazard) under a variant and
+ * everything that it depends on. OHMEN_COMPUTE names what this version cannot evaluate. */
+ohmen_status figures_compile(struct figures *f, const struct variant *v, const char *id,
+                             const struct compiled **out, ohmen_error *e);
+
+/* Values of everything that was compiled so far. OHMEN_COMPUTE names the figure that is
+ * not a finite number. */
+ohmen_status figures_evaluate(struct figures *f, ohmen_error *e);
+
+double figure_value(const struct figures *f, figure_id id);
+struct dim figure_dim(const struct figures *f, figure_id id);
+const struct figure *figure_at(const struct figures *f, figure_id id);
+const char *figure_name(const struct figures *f, struct arena *a, figure_id id);
+
+/* The figure of a unit by its property and qualifiers (NULL: none); FIGURE_NONE. */
+figure_id compiled_figure(const struct figures *f, const struct compiled *u, enum property p,
+                      const char *q1, const char *q2);
+
+/* --- hazards --- */
+
+/* A scheme works, or does not; with `sees_row` also: and its function sees the fault. */
+struct condition {
+    const struct condition *before;
+    const char *id;
+    const char *sees_row;
+    bool works;
+};
+
+/* One end of the event tree. */
+struct end {
+    const struct condition *condition; /* newest first */
+    const char *path;                  /* "never/fire" */
+    const char *row;
+    const char *outcome;           /* "none" or a key of the outcomes */
+    size_t outcome_index;          /* SIZE_MAX for none */
+    figure_id probability, damage; /* damage: of the outcome at this end's clearance time;
+                                      FIGURE_NONE for none */
+    uint32_t root;                 /* of the diagram */
+};
+struct hazard_exports {
+    const struct diagram *diagram;
+    size_t n_variables;
+    const char **variables; /* element ids; a `sees` variable has its row's name */
+    bool *is_sees;
+    struct end *ends;
+    size_t n_ends;
+    size_t n_outcomes; /* as the keys of the hazard's outcomes */
+    figure_id *probability, *frequency_of, *damage_of, *risk_of;
+    figure_id frequency, damaging, damage, risk;
+};
+
+struct scheme_exports {
+    const struct diagram *diagram; /* root 0: the scheme fails */
+    size_t n_variables;
+    const char **variables;
+};
+
+/* --- explaining --- */
+
+/* The formula of a figure in terms of other figures and literals, such as
+ * "H-BUS1.frequency * H-BUS1.probability.slow". Leaves give their literal. */
+const char *figure_formula(struct figures *f, struct arena *a, figure_id id);
+
+/* The figures that its formula names, in order, without repetition. */
+struct figure_ids ARRAY_BODY(figure_id);
+void figure_inputs(struct figures *f, struct arena *a, figure_id id, struct figure_ids *out);
+
+/* Finds a figure by its name, compiling what is needed (of decisions: see
+ * decide/weigh.h). OHMEN_UNKNOWN with the nearest name. */
+ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e);
+
+/* A figure of a unit by the part of its name behind the object: "risk.slow". */
+ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest, figure_id *out,
+                       ohmen_error *e);
+
+/* The register's own settings as a unit: register.discount. */
+const struct compiled *figures_settings(struct figures *f);
+
+/* --- what is not used --- */
+
+/* Fields that are given but not evaluated by this version, as "H-1: growth" one line
+ * an object, in order of kind and id. */
+struct unused ARRAY_BODY(const char *);
+void figures_unused(struct arena *a, const struct model *m, struct unused *out);
+
+#endif

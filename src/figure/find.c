@@ -1,0 +1,132 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Finding a figure by its name, and what this version does not use. */
+#include <string.h>
+
+#include "figure/compile.h"
+
+/* "ID.rest@A+B" cut into its parts. */
+struct name_parts {
+    const char *id, *rest; /* rest: "risk.slow" */
+    ARRAY(const char *) options;
+};
+
+static void cut_name(struct arena *a, const char *name, struct name_parts *p)
+{
+    const char *at = strchr(name, '@');
+    const char *head = at ? arena_strn(a, name, (size_t)(at - name)) : name;
+    const char *dot = strchr(head, '.');
+    *p = (struct name_parts){.id = head, .rest = ""};
+    if (dot) {
+        p->id = arena_strn(a, head, (size_t)(dot - head));
+        p->rest = dot + 1;
+    }
+    while (at) {
+        const char *from = at + 1;
+        at = strchr(from, '+');
+        *array_push(a, &p->options) = at ? arena_strn(a, from, (size_t)(at - from)) : from;
+    }
+}
+
+static ohmen_status unknown_object(struct figures *f, const char *id, ohmen_error *e)
+{
+    struct nearest near;
+    nearest_init(&near, id);
+    for (size_t i = 0; i < f->base->by_id.n; i++)
+        nearest_offer(&near, f->base->by_id.at[i].key);
+    const char *best = nearest_take(&near);
+    return error_set(e, OHMEN_UNKNOWN, "there is no \"%s\" in the register%s%s%s", id,
+                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+}
+
+static const char *without_variant(struct arena *a, const char *name)
+{
+    const char *at = strchr(name, '@');
+    return at ? arena_strn(a, name, (size_t)(at - name)) : name;
+}
+
+ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest, figure_id *out,
+                       ohmen_error *e)
+{
+    const char *wanted = arena_printf(f->arena, "%s.%s", u->id, rest);
+    struct nearest near;
+    nearest_init(&near, rest);
+    for (figure_id i = u->first; i < u->first + u->n; i++) {
+        const char *name = without_variant(f->arena, figure_name(f, f->arena, i));
+        if (text_equal(name, wanted)) {
+            *out = i;
+            return OHMEN_OK;
+        }
+        nearest_offer(&near, name + strlen(u->id) + 1);
+    }
+    if (!*rest && u->main != FIGURE_NONE)
+        return error_set(e, OHMEN_UNKNOWN, "\"%s\" is an object; its main figure is %s", u->id,
+                         figure_name(f, f->arena, u->main));
+    const char *best = nearest_take(&near);
+    return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no figure \"%s\"%s%s%s", u->id, rest,
+                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+}
+
+ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
+{
+    struct name_parts p;
+    const struct variant *v;
+    const struct compiled *u;
+    cut_name(f->arena, name, &p);
+    ohmen_status status = figures_variant(f, p.options.n, p.options.at, &v, e);
+    if (status != OHMEN_OK)
+        return status;
+    if (text_equal(p.id, REGISTER_ID))
+        u = figures_settings(f);
+    else if (!model_find(v->model, p.id))
+        return unknown_object(f, p.id, e);
+    else
+        status = figures_compile(f, v, p.id, &u, e);
+    return status == OHMEN_OK ? compiled_find(f, u, p.rest, out, e) : status;
+}
+
+/* --- the settings as a unit --- */
+
+const struct compiled *figures_settings(struct figures *f)
+{
+    const struct compiled *known = strmap_get(&f->compiled_by_key, REGISTER_ID);
+    const struct variant *base;
+    if (known || figures_variant(f, 0, NULL, &base, NULL) != OHMEN_OK)
+        return known;
+    const struct register_settings *s = f->base->settings;
+    struct building b;
+    compiled_begin(f, base, model_find(f->base, REGISTER_ID), REGISTER_ID, &b);
+    compiled_add(&b, PROPERTY_DISCOUNT, NULL, NULL, compile_quantity(&b, s->discount), NULL,
+             quantity_reads(f, s->discount));
+    compiled_end(&b);
+    return b.unit;
+}
+
+/* --- what is not used --- */
+
+struct looking {
+    struct arena *arena;
+    struct text keys;
+};
+
+static enum walk look_at_field(void *ctx, const struct visit *v)
+{
+    struct looking *l = ctx;
+    if (!(v->field->flags & LATER))
+        return WALK_INTO;
+    text_printf(&l->keys, "%s%s", l->keys.n ? ", " : "", v->path);
+    return WALK_PAST;
+}
+
+void figures_unused(struct arena *a, const struct model *m, struct unused *out)
+{
+    for (int k = 0; k < KIND_COUNT; k++)
+        for (size_t i = 0; i < m->of[k].n; i++) {
+            const struct object *o = m->of[k].at[i];
+            struct looking l = {.arena = a};
+            struct walker w = {.ctx = &l, .enter = look_at_field};
+            text_init(&l.keys, a);
+            walk_table(a, kinds[k].table, o->node, o->data, &w);
+            if (l.keys.n)
+                *array_push(a, out) = arena_printf(a, "%s: %s", o->id, text_str(&l.keys));
+        }
+}

@@ -1,0 +1,141 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* References and cycles, and the order in which an object's checks run. */
+#include "model/check.h"
+
+struct place check_place(const struct object *o, const struct node *node)
+{
+    return node ? node->place : o->node->place;
+}
+
+/* --- references --- */
+
+struct offering {
+    const struct model *model;
+    struct nearest *near;
+    unsigned kinds;
+};
+
+static void offer_objects(const struct offering *f)
+{
+    for (const struct model *m = f->model; m; m = m->below)
+        for (size_t i = 0; i < m->by_id.n; i++) {
+            const struct object *o = m->by_id.at[i].value;
+            if (o && (f->kinds & KIND_BIT(o->kind)))
+                nearest_offer(f->near, o->id);
+        }
+}
+
+static void unknown_reference(struct checking *c, const struct reference *r)
+{
+    struct nearest near;
+    nearest_init(&near, r->id);
+    offer_objects(&(struct offering){c->model, &near, r->kinds});
+    const char *best = nearest_take(&near);
+    const char *hint = best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "";
+    diag_add(c->diags, r->place, "there is no \"%s\"; expected %s%s", r->id,
+             kinds_words(c->arena, r->kinds), hint);
+}
+
+void check_references(struct checking *c, const struct object *o)
+{
+    for (size_t i = 0; i < o->refs.n; i++) {
+        const struct reference *r = &o->refs.at[i];
+        const struct object *to = model_find(c->model, r->id);
+        if (!to)
+            unknown_reference(c, r);
+        else if (!(r->kinds & KIND_BIT(to->kind)))
+            diag_add(c->diags, r->place, "\"%s\" is %s; expected %s", r->id,
+                     kinds_words(c->arena, KIND_BIT(to->kind)), kinds_words(c->arena, r->kinds));
+    }
+}
+
+/* --- cycles --- */
+
+/* Kinds whose references must not lead back to where they began. */
+static bool is_ordered(enum kind k)
+{
+    return k == KIND_VALUE || k == KIND_SCHEME || k == KIND_HAZARD || k == KIND_SITE;
+}
+
+struct cycle_walk {
+    struct checking *c;
+    struct strmap state; /* id -> open or done */
+    ARRAY(const struct object *) trail;
+    ARRAY(size_t) next; /* next reference of each object on the trail */
+};
+
+static char open_mark, done_mark;
+
+static void report_cycle(struct cycle_walk *w, const struct reference *r)
+{
+    struct text t;
+    size_t from = 0;
+    text_init(&t, w->c->arena);
+    while (!text_equal(w->trail.at[from]->id, r->id))
+        from++;
+    for (size_t i = from; i < w->trail.n; i++)
+        text_printf(&t, "%s -> ", w->trail.at[i]->id);
+    text_add(&t, r->id);
+    diag_add(w->c->diags, r->place, "\"%s\" is defined by itself: %s", r->id, text_str(&t));
+}
+
+static void enter(struct cycle_walk *w, const struct object *o)
+{
+    strmap_set(w->c->arena, &w->state, o->id, &open_mark);
+    *array_push(w->c->arena, &w->trail) = o;
+    *array_push(w->c->arena, &w->next) = 0;
+}
+
+/* One step of the search that keeps its own stack: structures of any length are safe. */
+static void step(struct cycle_walk *w)
+{
+    const struct object *o = *array_last(&w->trail);
+    size_t *next = array_last(&w->next);
+    if (*next == o->refs.n) {
+        strmap_set(w->c->arena, &w->state, o->id, &done_mark);
+        w->trail.n--;
+        w->next.n--;
+        return;
+    }
+    const struct reference *r = &o->refs.at[(*next)++];
+    const struct object *to = model_find(w->c->model, r->id);
+    if (!to || !is_ordered(to->kind) || (to->kind == KIND_SITE) != (o->kind == KIND_SITE))
+        return;
+    const void *state = strmap_get(&w->state, to->id);
+    if (state == &open_mark)
+        report_cycle(w, r);
+    else if (!state)
+        enter(w, to);
+}
+
+void check_cycles(struct checking *c)
+{
+    struct cycle_walk w = {.c = c};
+    for (size_t i = 0; i < c->model->by_id.n; i++) {
+        const struct object *o = c->model->by_id.at[i].value;
+        if (!o || !is_ordered(o->kind) || strmap_has(&w.state, o->id))
+            continue;
+        enter(&w, o);
+        while (w.trail.n)
+            step(&w);
+    }
+}
+
+/* --- all of one object --- */
+
+void check_object(struct checking *c, const struct object *o)
+{
+    check_references(c, o);
+    check_quantities(c, o);
+    switch (o->kind) {
+    case KIND_REGISTER: check_settings(c, o); break;
+    case KIND_RATE: check_rate(c, o); break;
+    case KIND_ELEMENT:
+    case KIND_TYPE: check_element(c, o); break;
+    case KIND_HAZARD: check_hazard(c, o); break;
+    case KIND_OPTION: check_option(c, o); break;
+    case KIND_STATE: check_state(c, o); break;
+    case KIND_DECISION: check_decision(c, o); break;
+    default: break;
+    }
+}

@@ -1,0 +1,188 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Settings, rates, elements and options. States and decisions are in check_decide.c. */
+#include "model/check.h"
+
+#include <math.h>
+
+/* --- settings --- */
+
+static bool has_key(const struct rows *rows, const char *key)
+{
+    for (size_t i = 0; i < rows->n; i++)
+        if (text_equal(rows->keys[i], key))
+            return true;
+    return false;
+}
+
+static void check_perspective(struct checking *c, const struct object *o)
+{
+    const struct register_settings *s = o->data;
+    if (!s->perspective || text_equal(s->perspective, "all") ||
+        has_key(&s->perspectives, s->perspective))
+        return;
+    struct nearest near;
+    nearest_init(&near, s->perspective);
+    for (size_t i = 0; i < s->perspectives.n; i++)
+        nearest_offer(&near, s->perspectives.keys[i]);
+    const char *best = nearest_take(&near);
+    diag_add(c->diags, node_get(o->node, "perspective")->place, "there is no perspective \"%s\"%s",
+             s->perspective, best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "");
+}
+
+static void check_limits(struct checking *c, const struct quantity *below,
+                         const struct quantity *above, const struct node *node)
+{
+    if (below && above && expr_constant(below->expr) >= expr_constant(above->expr))
+        diag_add(c->diags, node_get(node, "intolerable-above")->place,
+                 "\"intolerable-above\" must lie above \"acceptable-below\"");
+}
+
+/* Horizons are whole years: the present value of a year needs no convention for
+ * a broken one, and no horizon is longer than this. */
+#define LONGEST_HORIZON 200
+
+static void check_horizon(struct checking *c, const struct object *o)
+{
+    const struct register_settings *s = o->data;
+    double years = expr_constant(s->horizon->expr);
+    if (dim_equal(s->horizon->dim, dim_time) &&
+        (years != floor(years) || years < 1 || years > LONGEST_HORIZON))
+        diag_add(c->diags, node_get(o->node, "horizon")->place,
+                 "the horizon is a whole number of years from 1 to %d", LONGEST_HORIZON);
+}
+
+void check_settings(struct checking *c, const struct object *o)
+{
+    const struct register_settings *s = o->data;
+    check_perspective(c, o);
+    check_horizon(c, o);
+    if (!s->criteria)
+        return;
+    const struct node *criteria = node_get(o->node, "criteria");
+    const struct money_criteria *m = s->criteria->money;
+    const struct people_criteria *p = s->criteria->people;
+    if (m)
+        check_limits(c, m->acceptable_below, m->intolerable_above, node_get(criteria, "money"));
+    if (p)
+        check_limits(c, p->acceptable_below, p->intolerable_above, node_get(criteria, "people"));
+}
+
+/* --- rates --- */
+
+static void expect_dim(struct checking *c, const struct quantity *q, struct dim want,
+                       const struct node *node)
+{
+    if (q && !dim_equal(q->dim, want))
+        diag_add(c->diags, node->place, "expected %s, found %s",
+                 dim_words(c->arena, &c->model->units, want),
+                 dim_words(c->arena, &c->model->units, q->dim));
+}
+
+static void check_prior(struct checking *c, const struct prior *p, const struct node *node,
+                        struct dim want)
+{
+    expect_dim(c, p->mean, want, node_get(node, "mean"));
+    expect_dim(c, p->median, want, node_get(node, "median"));
+    expect_dim(c, p->p5, want, node_get(node, "p5"));
+    expect_dim(c, p->p50, want, node_get(node, "p50"));
+    expect_dim(c, p->p95, want, node_get(node, "p95"));
+    expect_dim(c, p->p99, want, node_get(node, "p99"));
+    if (p->error_factor && expr_constant(p->error_factor->expr) <= 1)
+        diag_add(c->diags, node_get(node, "error-factor")->place,
+                 "an error factor is the 95 %% point over the median: greater than 1");
+}
+
+static void check_exposures(struct checking *c, const struct object *o, struct dim want)
+{
+    const struct rate *r = o->data;
+    const struct node *node = node_get(o->node, "exposure");
+    for (size_t i = 0; i < r->exposure.n; i++) {
+        const struct exposure *x = ROW(struct exposure, r->exposure, i);
+        const struct node *row = node->pairs[i].value;
+        struct dim amount = dim_divide(dim_divide(dim_number, want), dim_time);
+        expect_dim(c, x->amount, amount, node_get(row, "amount"));
+        if (x->to != DAY_NONE && x->to < x->from)
+            diag_add(c->diags, node_get(row, "to")->place, "this stretch ends before it begins");
+    }
+}
+
+void check_rate(struct checking *c, const struct object *o)
+{
+    const struct rate *r = o->data;
+    struct dim want;
+    if (!check_dim_of(c, o->id, &want))
+        return;
+    if (want.e[DIM_TIME] != -1)
+        diag_add(c->diags, node_get(o->node, "per")->place,
+                 "a rate is per time too: expected units such as section a, found \"%s\"", r->per);
+    expect_dim(c, r->is, want, node_get(o->node, "is"));
+    if (r->prior)
+        check_prior(c, r->prior, node_get(o->node, "prior"), want);
+    check_exposures(c, o, want);
+}
+
+/* --- elements --- */
+
+static void check_record(struct checking *c, const struct demand_record *r, const struct node *node)
+{
+    if (r->is && (r->failures >= 0 || r->demands >= 0))
+        diag_add(c->diags, node->place, "counts of failures and demands go with a prior");
+    if (r->prior < 0)
+        return;
+    if (r->failures < 0 || r->demands < 0)
+        diag_add(c->diags, node->place, "a prior needs \"failures\" and \"demands\"");
+    else if (r->failures > r->demands)
+        diag_add(c->diags, node_get(node, "failures")->place,
+                 "there are more failures than demands; the demands include the failures");
+}
+
+void check_element(struct checking *c, const struct object *o)
+{
+    const struct demand_record *r = o->kind == KIND_ELEMENT
+                                        ? ((const struct element *)o->data)->per_demand
+                                        : ((const struct element_type *)o->data)->per_demand;
+    if (r)
+        check_record(c, r, node_get(o->node, "per-demand"));
+}
+
+/* --- options --- */
+
+static void check_other_options(struct checking *c, const struct object *o,
+                                const struct names *names, const char *key)
+{
+    const struct node *node = node_get(o->node, key);
+    for (size_t i = 0; i < names->n; i++)
+        if (text_equal(names->at[i], o->id))
+            diag_add(c->diags, node->items[i]->place, "an option cannot name itself in \"%s\"",
+                     key);
+}
+
+static void check_contradictions(struct checking *c, const struct object *o)
+{
+    const struct option *p = o->data;
+    const struct node *node = node_get(o->node, "requires");
+    for (size_t i = 0; i < p->requires.n; i++) {
+        const char *other = p->requires.at[i];
+        if (!model_get(c->model, KIND_OPTION, other) || text_equal(other, o->id))
+            continue;
+        const char *path = model_contradiction(c->arena, c->model, o->id, other);
+        if (path)
+            diag_add(c->diags, node->items[i]->place,
+                     "the options \"%s\" and \"%s\" contradict each other at %s, yet the one "
+                     "requires the other",
+                     o->id, other, path);
+    }
+}
+
+void check_option(struct checking *c, const struct object *o)
+{
+    const struct option *p = o->data;
+    check_other_options(c, o, &p->excludes, "excludes");
+    check_other_options(c, o, &p->requires, "requires");
+    check_contradictions(c, o);
+    for (size_t i = 0; i < p->excludes.n; i++)
+        for (size_t k = 0; k < p->requires.n; k++)
+            if (text_equal(p->excludes.at[i], p->requires.at[k]))
+                diag_add(c->diags, node_get(o->node, "excludes")->items[i]->place,
+                         "\"%s\" is both required and excluded", p->excludes.at[i]);
+}

@@ -1,0 +1,70 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The register in memory: bound objects, found by id.
+ *
+ * Ids are unique over all kinds. A model is immutable once loaded. A variant is a
+ * model that lies over another one: it holds only the objects that its changes
+ * touch, and finds all others below. */
+#ifndef MODEL_MODEL_H
+#define MODEL_MODEL_H
+
+#include "model/kinds.h"
+#include "model/walk.h"
+
+struct object {
+    enum kind kind;
+    const char *id;
+    const void *data;        /* the struct of its kind */
+    const struct node *node; /* canonical */
+    struct references refs;  /* what it refers to, in order of path */
+    bool changed;            /* differs from the object below (variants only) */
+};
+
+struct objects ARRAY_BODY(struct object *);
+
+struct model {
+    struct arena *arena;
+    struct units units;
+    struct strmap by_id;           /* id -> struct object *; NULL: removed here */
+    struct objects of[KIND_COUNT]; /* live, in byte order of ids (base models only) */
+    const struct model *below;     /* NULL for a base model */
+    const struct register_settings *settings;
+};
+
+/* The object, or NULL. */
+const struct object *model_find(const struct model *m, const char *id);
+/* The same with a kind that is known; its struct, or NULL. */
+const void *model_get(const struct model *m, enum kind kind, const char *id);
+
+/* An empty base model. */
+struct model *model_new(struct arena *a);
+
+/* One object to load. */
+struct model_source {
+    enum kind kind;
+    const char *id;
+    const struct node *node; /* a document node or a canonical one */
+};
+
+/* Binds and checks a whole register: everything that docs/documents.md calls an
+ * error is found here, for all objects at once. Options are applied and what they
+ * make of the register is checked too. NULL when there were diagnostics.
+ * `sources` in any order; ids are unique. */
+struct model *model_load(struct arena *a, const struct model_source *sources, size_t n,
+                         struct diags *d);
+
+/* The units of a register's settings node (currency and counts), before binding. */
+struct units model_units(struct arena *a, const struct node *settings);
+
+/* --- variants --- */
+
+/* A model over `base` with the changes of `options` (ids in byte order) applied.
+ * Adds diagnostics (at the places in the options' changes) and returns NULL when
+ * a result is wrong or two options contradict. n may be 0: `base` itself. */
+const struct model *model_variant(struct arena *a, const struct model *base, size_t n,
+                                  const char *const *options, struct diags *d);
+
+/* Do two options contradict? The path ("hazards/H-1/response/x/in"), or NULL. */
+const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
+                                const char *option_q);
+
+#endif

@@ -1,0 +1,193 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Variants: a model with the changes of some options laid over it.
+ *
+ * Only touched objects are bound anew; everything else is found below. Invariant:
+ * the order of options does not matter, since contradictions are refused and `was`
+ * only enters products. */
+#include "model/variant.h"
+
+#include "doc/patch.h"
+#include "model/check.h"
+
+static const struct node *change_of(const struct model *m, const char *option)
+{
+    const struct option *o = model_get(m, KIND_OPTION, option);
+    return o->change;
+}
+
+const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
+                                const char *option_q)
+{
+    struct diags quiet;
+    diags_init(&quiet, a);
+    struct binding b = {.arena = a, .units = &base->units, .diags = &quiet};
+    struct patch_rules rules = bind_patch_rules(&b);
+    return patch_contradiction(a, &rules, change_of(base, option_p), change_of(base, option_q));
+}
+
+struct applying {
+    struct arena *arena;
+    struct model *variant;
+    struct binding binding;
+    struct patch_rules rules;
+    struct diags *diags;
+    struct strmap nodes;  /* id -> node so far; NULL value: removed */
+    struct strmap places; /* id -> the change's node, for messages */
+    struct strmap kind_of;
+};
+
+static const struct node *node_so_far(struct applying *ap, const char *id)
+{
+    if (strmap_has(&ap->nodes, id))
+        return strmap_get(&ap->nodes, id);
+    const struct object *o = model_find(ap->variant->below, id);
+    return o ? o->node : NULL;
+}
+
+static void wrong_kind(struct applying *ap, const struct object *o, const struct pair *p)
+{
+    diag_add(ap->diags, p->place, "\"%s\" is %s already", p->key,
+             kinds_words(ap->arena, KIND_BIT(o->kind)));
+}
+
+static void apply_to_object(struct applying *ap, enum kind kind, const struct pair *p)
+{
+    const struct object *below = model_find(ap->variant->below, p->key);
+    const struct node *before = node_so_far(ap, p->key);
+    if (below && below->kind != kind) {
+        wrong_kind(ap, below, p);
+        return;
+    }
+    const char *path = arena_printf(ap->arena, "%s/%s", kinds[kind].section, p->key);
+    bool removal = p->value->type == NODE_SCALAR;
+    if (removal && !before)
+        diag_add(ap->diags, p->value->place, "there is no \"%s\" to remove", p->key);
+    size_t errors = ap->diags->count;
+    struct node *after =
+        removal ? NULL : patch_apply(ap->arena, &ap->rules, before, p->value, path);
+    if (ap->diags->count != errors)
+        return;
+    strmap_set(ap->arena, &ap->nodes, p->key, after);
+    strmap_set(ap->arena, &ap->places, p->key, (void *)p);
+    strmap_set(ap->arena, &ap->kind_of, p->key, (void *)&kinds[kind]);
+}
+
+static void apply_option(struct applying *ap, const char *option)
+{
+    const struct node *change = change_of(ap->variant->below, option);
+    for (size_t s = 0; s < change->n; s++) {
+        const struct pair *section = &change->pairs[s];
+        enum kind kind = kind_of_section(section->key);
+        for (size_t i = 0; i < section->value->n; i++)
+            apply_to_object(ap, kind, &section->value->pairs[i]);
+    }
+}
+
+/* Binds what the changes made; the places are those of the change where they have
+ * one, else of the change's object. */
+static void bind_results(struct applying *ap)
+{
+    for (size_t i = 0; i < ap->nodes.n; i++) {
+        const char *id = ap->nodes.at[i].key;
+        struct node *node = ap->nodes.at[i].value;
+        const struct kind_info *k = strmap_get(&ap->kind_of, id);
+        struct object *o = NULL;
+        if (node) {
+            o = model_bind(&ap->binding, (enum kind)(k - kinds), id, node);
+            if (!o)
+                continue;
+            o->changed = true;
+        }
+        strmap_set(ap->arena, &ap->variant->by_id, id, o);
+    }
+}
+
+/* What was removed must not be needed any more. */
+static void check_removed(struct applying *ap, const char *id)
+{
+    const struct pair *p = strmap_get(&ap->places, id);
+    for (const struct model *m = ap->variant; m; m = m->below)
+        for (size_t i = 0; i < m->by_id.n; i++) {
+            const struct object *o = m->by_id.at[i].value;
+            if (!o || model_find(ap->variant, o->id) != o || !kinds[o->kind].computes)
+                continue;
+            for (size_t r = 0; r < o->refs.n; r++)
+                if (text_equal(o->refs.at[r].id, id))
+                    diag_add(ap->diags, p->place, "\"%s\" cannot be removed: \"%s\" needs it at %s",
+                             id, o->id, o->refs.at[r].path);
+        }
+}
+
+/* Objects that use a value were checked with the dimension that it had. */
+static void check_same_dim(struct applying *ap, struct checking *c, const struct object *o)
+{
+    const struct object *below = model_find(ap->variant->below, o->id);
+    const struct pair *p = strmap_get(&ap->places, o->id);
+    struct checking under = {.arena = c->arena, .model = ap->variant->below, .diags = c->diags};
+    struct dim before, after;
+    if (!below || (o->kind != KIND_VALUE && o->kind != KIND_RATE))
+        return;
+    if (check_dim_of(&under, o->id, &before) && check_dim_of(c, o->id, &after) &&
+        !dim_equal(before, after))
+        diag_add(ap->diags, p->place, "a change cannot turn \"%s\" from %s into %s", o->id,
+                 dim_words(c->arena, &c->model->units, before),
+                 dim_words(c->arena, &c->model->units, after));
+}
+
+static void check_results(struct applying *ap)
+{
+    struct checking c = {.arena = ap->arena, .model = ap->variant, .diags = ap->diags};
+    for (size_t i = 0; i < ap->variant->by_id.n; i++) {
+        const struct object *o = ap->variant->by_id.at[i].value;
+        if (!o) {
+            check_removed(ap, ap->variant->by_id.at[i].key);
+            continue;
+        }
+        check_object(&c, o);
+        check_same_dim(ap, &c, o);
+    }
+    check_cycles(&c);
+}
+
+static bool refuse_contradictions(struct applying *ap, size_t n, const char *const *options)
+{
+    for (size_t i = 0; i < n; i++)
+        for (size_t k = 0; k < i; k++) {
+            const char *path =
+                model_contradiction(ap->arena, ap->variant->below, options[k], options[i]);
+            if (!path)
+                continue;
+            const struct object *o = model_find(ap->variant->below, options[i]);
+            diag_add(ap->diags, o->node->place,
+                     "the options \"%s\" and \"%s\" contradict each other at %s", options[k],
+                     options[i], path);
+            return false;
+        }
+    return true;
+}
+
+const struct model *model_variant(struct arena *a, const struct model *base, size_t n,
+                                  const char *const *options, struct diags *d)
+{
+    if (n == 0)
+        return base;
+    size_t errors = d->count;
+    struct model *m = model_new(a);
+    m->below = base;
+    m->units = base->units;
+    m->settings = base->settings;
+    struct applying ap = {.arena = a,
+                          .variant = m,
+                          .binding = {.arena = a, .units = &m->units, .diags = d},
+                          .diags = d};
+    ap.rules = bind_patch_rules(&ap.binding);
+    if (!refuse_contradictions(&ap, n, options))
+        return NULL;
+    for (size_t i = 0; i < n; i++)
+        apply_option(&ap, options[i]);
+    if (d->count == errors)
+        bind_results(&ap);
+    if (d->count == errors)
+        check_results(&ap);
+    return d->count == errors ? m : NULL;
+}

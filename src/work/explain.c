@@ -1,0 +1,129 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The derivation of a figure: formula by formula, down to inputs with their source. */
+#include "work/work.h"
+
+struct explaining {
+    struct job *job;
+    unsigned depth; /* 0: all */
+    struct figure_ids todo;
+    ARRAY(unsigned) levels;
+};
+
+static bool is_known(const struct explaining *x, figure_id id)
+{
+    for (size_t i = 0; i < x->todo.n; i++)
+        if (x->todo.at[i] == id)
+            return true;
+    return false;
+}
+
+/* Breadth first, each figure once, at its least level. */
+static void collect(struct explaining *x, figure_id root)
+{
+    struct job *j = x->job;
+    *array_push(j->arena, &x->todo) = root;
+    *array_push(j->arena, &x->levels) = 1;
+    for (size_t i = 0; i < x->todo.n; i++) {
+        struct figure_ids inputs = {0};
+        if (x->depth && x->levels.at[i] >= x->depth)
+            continue;
+        unsigned level = x->levels.at[i] + 1;
+        figure_inputs(j->figures, j->arena, x->todo.at[i], &inputs);
+        for (size_t k = 0; k < inputs.n; k++) {
+            if (is_known(x, inputs.at[k]))
+                continue;
+            *array_push(j->arena, &x->todo) = inputs.at[k];
+            *array_push(j->arena, &x->levels) = level;
+        }
+    }
+}
+
+/* "NUREG-6928: Industry-average performance ..., table 5-1"; "none" for a leaf without. */
+static const char *source_words(struct job *j, figure_id id)
+{
+    const struct figure *g = figure_at(j->figures, id);
+    struct figure_ids inputs = {0};
+    figure_inputs(j->figures, j->arena, id, &inputs);
+    if (!g->source)
+        return inputs.n ? "" : "none";
+    const struct source *s = model_get(j->model, KIND_SOURCE, g->source);
+    return arena_printf(j->arena, "%s: %s%s%s", g->source, s->title, s->reference ? ", " : "",
+                        s->reference ? s->reference : "");
+}
+
+static const char *shown_value(struct job *j, figure_id id)
+{
+    char number[32];
+    double shown;
+    const char *unit =
+        display_unit(j, figure_dim(j->figures, id), figure_value(j->figures, id), &shown);
+    number_text(number, shown, STYLE_PLAIN);
+    return arena_printf(j->arena, "%s%s%s", number, *unit ? " " : "", unit);
+}
+
+static void explain_row(struct job *j, struct block *b, figure_id id, unsigned level)
+{
+    struct report *r = j->report;
+    struct row *row = block_row(r, b);
+    row_count(r, row, level);
+    row_text(r, row, figure_name(j->figures, j->arena, id));
+    row_text(r, row, shown_value(j, id));
+    row_text(r, row, figure_formula(j->figures, j->arena, id));
+    row_text(r, row, source_words(j, id));
+    char exact[32];
+    row_text(r, row, text_double(exact, figure_value(j->figures, id)));
+    row_text(r, row, dim_unit(j->arena, &j->model->units, figure_dim(j->figures, id)));
+}
+
+static void explain_table(struct explaining *x)
+{
+    struct report *r = x->job->report;
+    struct block *b = report_table(r, "derivation", "Derivation");
+    block_column(r, b, "level", "Level", "", STYLE_PLAIN)->keep = 3;
+    block_column(r, b, "figure", "Figure", "", STYLE_PLAIN);
+    block_column(r, b, "value", "Value", "", STYLE_PLAIN)->right = true;
+    block_column(r, b, "formula", "Formula", "", STYLE_PLAIN)->keep = 5;
+    block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 4;
+    block_column(r, b, "exact", "Exact", "", STYLE_PLAIN)->keep = 2;
+    block_column(r, b, "unit", "Unit", "", STYLE_PLAIN)->keep = 2;
+    for (size_t i = 0; i < x->todo.n; i++)
+        explain_row(x->job, b, x->todo.at[i], x->levels.at[i]);
+}
+
+struct explain_request {
+    const char *figure;
+    unsigned depth;
+};
+
+static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
+{
+    const struct explain_request *q = ctx;
+    figure_id id = FIGURE_NONE;
+    ohmen_status status = job_load_figures(j, e);
+    if (status == OHMEN_OK)
+        status = weigh_find(j->figures, q->figure, &id, e);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(j->figures, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct explaining x = {.job = j, .depth = q->depth};
+    const struct figure *g = figure_at(j->figures, id);
+    report_note(j->report, "figure", "%s = %s: %s. Damage borne by: %s.",
+                figure_name(j->figures, j->arena, id), shown_value(j, id),
+                properties[g->property].help, perspective_words(j));
+    collect(&x, id);
+    explain_table(&x);
+    if (graph_degree(j->figures->graph, g->node) > 1)
+        report_note(
+            j->report, "not-linear",
+            "This is the value at the means of what is unknown or varies; since one of them enters "
+            "more than once, or in a curve, the true mean is different.");
+    return OHMEN_OK;
+}
+
+ohmen_status ohmen_explain(ohmen_register *r, const ohmen_query *q, const char *figure,
+                           unsigned depth, ohmen_report **out, ohmen_error *e)
+{
+    struct explain_request request = {figure, depth};
+    return job_do(r, STORE_READ, q, run_explain, &request, out, e);
+}

@@ -1,0 +1,58 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Hazards as a table, and their grid. */
+#include "work/work.h"
+
+static ohmen_status compute_hazards(struct job *j, struct hazards *h, ohmen_error *e)
+{
+    ohmen_status status = job_load_figures(j, e);
+    if (status == OHMEN_OK)
+        status = job_compile_hazards(j, h, e);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(j->figures, e);
+    return status;
+}
+
+static ohmen_status run_hazards(struct job *j, void *ctx, ohmen_error *e)
+{
+    struct hazards h = {0};
+    (void)ctx;
+    ohmen_status status = compute_hazards(j, &h, e);
+    if (status != OHMEN_OK)
+        return status;
+    part_hazards(j, &h);
+    report_note(j->report, "perspective", "Damage borne by: %s.", perspective_words(j));
+    return OHMEN_OK;
+}
+
+ohmen_status ohmen_hazards(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                           ohmen_error *e)
+{
+    return job_do(r, STORE_READ, q, run_hazards, NULL, out, e);
+}
+
+static ohmen_status run_grid(struct job *j, void *ctx, ohmen_error *e)
+{
+    struct hazards h = {0};
+    struct weighing *w = NULL;
+    ohmen_status status;
+    if (!ctx) {
+        status = compute_hazards(j, &h, e);
+        if (status == OHMEN_OK)
+            part_hazard_grid(j, &h);
+        return status;
+    }
+    status = job_load_figures(j, e);
+    if (status == OHMEN_OK)
+        status = weigh_compile(j->figures, ctx, &w, e);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(j->figures, e);
+    if (status == OHMEN_OK)
+        part_weighing_grid(j, w);
+    return status;
+}
+
+ohmen_status ohmen_grid(ohmen_register *r, const ohmen_query *q, const char *decision,
+                        ohmen_report **out, ohmen_error *e)
+{
+    return job_do(r, STORE_READ, q, run_grid, (void *)decision, out, e);
+}

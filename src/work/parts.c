@@ -1,0 +1,289 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Parts that several reports have: title block, hazards, notes, cautions. */
+#include <math.h>
+#include <stdlib.h>
+
+#include "base/date.h"
+#include "base/utf8.h"
+#include "doc/json.h"
+#include "work/work.h"
+
+const char *object_name(const struct object *o)
+{
+    static const char *const keys[] = {"name", "title", "question"};
+    for (size_t i = 0; i < sizeof keys / sizeof *keys; i++) {
+        const struct node *n = node_get(o->node, keys[i]);
+        if (n && n->type == NODE_SCALAR)
+            return n->text;
+    }
+    return "";
+}
+
+const char *unit_per_year(struct job *j)
+{
+    return arena_printf(j->arena, "%s/a", j->model->settings->currency);
+}
+
+const char *perspective_words(struct job *j)
+{
+    return j->figures->perspective ? j->figures->perspective : "every category of damage";
+}
+
+static const char *money_rate(struct job *j, double x)
+{
+    return money_text(j->arena, x, unit_per_year(j));
+}
+
+static const char *reads(struct job *j, const struct quantity *q)
+{
+    struct text t;
+    text_init(&t, j->arena);
+    expr_write(&t, q->expr);
+    return text_str(&t);
+}
+
+/* --- title block --- */
+
+static void pair(struct job *j, struct block *b, const char *name, const char *text)
+{
+    row_text(j->report, block_pair(j->report, b, name), text);
+}
+
+/* The entry that is looked at: number, time, author. */
+static const char *entry_words(struct job *j, const struct store_entry *x)
+{
+    char utc[UTC_TEXT];
+    return arena_printf(j->arena, "entry %llu of %s by %s", (unsigned long long)x->seq,
+                        utc_write(utc, x->utc), x->author);
+}
+
+void part_title_block(struct job *j, ohmen_error *e)
+{
+    const struct register_settings *s = j->model->settings;
+    struct store_entries entries = {0};
+    char date[DATE_TEXT], hash[STORE_HASH_TEXT], now[UTC_TEXT];
+    struct report *r = j->report;
+    report_heading(r, 1, s->title);
+    struct block *b = report_pairs(r, "title-block", NULL);
+    pair(j, b, "Register", j->path);
+    if (store_entries(j->store, j->at, j->at, &entries, e) == OHMEN_OK && entries.n)
+        pair(j, b, "Data as of", entry_words(j, &entries.at[0]));
+    if (store_content_hash(j->store, j->at, hash, e) == OHMEN_OK)
+        pair(j, b, "Content", arena_printf(j->arena, "BLAKE2b-256 %.16s...", hash));
+    pair(j, b, "Evaluated",
+         arena_printf(j->arena, "%s with ohmen %s", utc_write(now, clock_now()), OHMEN_VERSION));
+    pair(j, b, "Damage borne by", perspective_words(j));
+    pair(j, b, "Money",
+         arena_printf(j->arena, "%s at prices of %lld, interest %s", s->currency,
+                      (long long)s->prices, reads(j, s->discount)));
+    pair(j, b, "Horizon",
+         arena_printf(j->arena, "%s from %s", reads(j, s->horizon),
+                      date_write(date, weigh_start(s))));
+    if (j->query.site)
+        pair(j, b, "Only site", j->query.site);
+}
+
+/* --- hazards --- */
+
+static const struct hazard_exports *exports(const struct compiled *c)
+{
+    return c->exports;
+}
+
+static double risk_of(const struct job *j, const struct compiled *c)
+{
+    return figure_value(j->figures, exports(c)->risk);
+}
+
+/* Indices of hazards by falling risk; ties by id. */
+static size_t *by_risk(struct job *j, const struct hazards *h)
+{
+    size_t *order = NEW_ARRAY(j->arena, h->n, size_t);
+    for (size_t i = 0; i < h->n; i++) {
+        size_t k = i;
+        for (; k > 0 && risk_of(j, h->at[i]) > risk_of(j, h->at[order[k - 1]]); k--)
+            order[k] = order[k - 1];
+        order[k] = i;
+    }
+    return order;
+}
+
+const char *criteria_word(struct job *j, double risk)
+{
+    const struct criteria *c = j->model->settings->criteria;
+    if (!c || !c->money || !text_equal(scope_words[c->money->scope], "hazard"))
+        return "";
+    const struct quantity *low = c->money->acceptable_below, *high = c->money->intolerable_above;
+    if (high && risk > expr_constant(high->expr))
+        return "intolerable";
+    if (low && risk < expr_constant(low->expr))
+        return "acceptable";
+    return "tolerable";
+}
+
+static void number_cell(struct job *j, struct row *row, figure_id id)
+{
+    row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
+}
+
+static void hazard_row(struct job *j, struct block *b, size_t rank, const struct compiled *c)
+{
+    const struct hazard_exports *x = exports(c);
+    struct row *row = block_row(j->report, b);
+    row_count(j->report, row, rank);
+    row_text(j->report, row, c->id);
+    row_text(j->report, row, object_name(c->object));
+    number_cell(j, row, x->frequency);
+    number_cell(j, row, x->damaging);
+    number_cell(j, row, x->damage);
+    number_cell(j, row, x->risk);
+    row_text(j->report, row, criteria_word(j, risk_of(j, c)));
+}
+
+void part_hazards(struct job *j, const struct hazards *h)
+{
+    struct report *r = j->report;
+    const char *currency = j->model->settings->currency;
+    struct block *b = report_table(r, "hazards", "Hazards by risk");
+    block_column(r, b, "rank", "Rank", "", STYLE_PLAIN)->keep = 5;
+    block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
+    block_column(r, b, "name", "What happens", "", STYLE_PLAIN)->keep = 3;
+    block_column(r, b, "frequency", "Occurs", "1/a", STYLE_FREQUENCY)->keep = 2;
+    block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 4;
+    block_column(r, b, "damage", "Mean damage", currency, STYLE_MONEY)->keep = 4;
+    block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
+    block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 1;
+    size_t *order = by_risk(j, h);
+    for (size_t i = 0; i < h->n; i++)
+        hazard_row(j, b, i + 1, h->at[order[i]]);
+}
+
+void part_criteria_lines(struct job *j, struct block *grid)
+{
+    const struct criteria *c = j->model->settings->criteria;
+    if (!c || !c->money || !text_equal(scope_words[c->money->scope], "hazard"))
+        return;
+    const struct quantity *low = c->money->acceptable_below, *high = c->money->intolerable_above;
+    double x;
+    if (low && (x = expr_constant(low->expr)) > 0)
+        grid_add_line(j->report, grid,
+                      arena_printf(j->arena, "acceptable below %s", money_rate(j, x)), x, "a");
+    if (high && (x = expr_constant(high->expr)) > 0)
+        grid_add_line(j->report, grid,
+                      arena_printf(j->arena, "intolerable above %s", money_rate(j, x)), x, "i");
+}
+
+void part_hazard_grid(struct job *j, const struct hazards *h)
+{
+    struct report *r = j->report;
+    struct block *b =
+        report_grid(r, "grid", "Hazards by frequency and damage", j->model->settings->currency);
+    part_criteria_lines(j, b);
+    size_t *order = by_risk(j, h);
+    for (size_t i = 0; i < h->n; i++) {
+        const struct compiled *c = h->at[order[i]];
+        const struct hazard_exports *x = exports(c);
+        struct grid_mark *m = grid_add_mark(
+            r, b, arena_printf(j->arena, "%zu", i + 1),
+            arena_printf(j->arena, "%s %s", c->id, object_name(c->object)),
+            figure_value(j->figures, x->damaging), figure_value(j->figures, x->damage));
+        m->frequency_figure = figure_name(j->figures, j->arena, x->damaging);
+        m->damage_figure = figure_name(j->figures, j->arena, x->damage);
+    }
+}
+
+/* --- notes --- */
+
+void part_unused(struct job *j)
+{
+    struct unused u = {0};
+    struct text t;
+    figures_unused(j->arena, j->model, &u);
+    if (u.n == 0)
+        return;
+    text_init(&t, j->arena);
+    for (size_t i = 0; i < u.n; i++)
+        text_printf(&t, "%s%s", i ? "; " : "", u.at[i]);
+    report_note(
+        j->report, "not-used",
+        "Stored, but not used in the figures of this version: %s. Where one of these would matter, "
+        "the figures here leave it out.",
+        text_str(&t));
+}
+
+void part_linearity(struct job *j, const struct hazards *h)
+{
+    struct text t;
+    text_init(&t, j->arena);
+    for (size_t i = 0; i < h->n; i++)
+        if (graph_degree(j->figures->graph, figure_at(j->figures, exports(h->at[i])->risk)->node) >
+            1)
+            text_printf(&t, "%s%s", t.n ? ", " : "", h->at[i]->id);
+    if (t.n)
+        report_note(
+            j->report, "not-linear",
+            "Figures are computed at the means of what is unknown or varies. That is their mean, "
+            "exactly, where each unknown enters once. In %s one enters more than once, or in a "
+            "curve: there the true mean is different, and for unknowns shared by several elements "
+            "it is higher.",
+            text_str(&t));
+    else
+        report_note(
+            j->report, "linear",
+            "Figures are computed at the means of what is unknown or varies; every unknown enters "
+            "each risk once, so these are the means of the risks, exactly.");
+}
+
+void part_cautions(struct job *j)
+{
+    report_note(
+        j->report, "cautions",
+        "Cautions: these are statistical estimates from the data named, no prediction of single "
+        "events, and no substitute for protection coordination, arc-flash and earthing studies. "
+        "Where people may come to harm, local codes and the judgement of licensed engineers come "
+        "first.");
+}
+
+/* --- values and nodes for people --- */
+
+const char *display_unit(struct job *j, struct dim d, double value, double *shown)
+{
+    double hours = value * 8760;
+    if (dim_equal(d, dim_time) && value != 0 && fabs(value) < 1) {
+        bool seconds = fabs(hours) < 1.0 / 60, minutes = fabs(hours) < 1;
+        *shown = seconds ? hours * 3600 : minutes ? hours * 60 : hours;
+        return seconds ? "s" : minutes ? "min" : "h";
+    }
+    if (dim_equal(d, dim_energy)) {
+        *shown = hours;
+        return "kWh";
+    }
+    *shown = value;
+    return dim_unit(j->arena, &j->model->units, d);
+}
+
+static void write_brief(struct text *t, const struct node *n)
+{
+    if (n->type == NODE_SCALAR) {
+        text_add(t, n->text);
+        return;
+    }
+    text_byte(t, n->type == NODE_MAP ? '{' : '[');
+    for (size_t i = 0; i < n->n; i++) {
+        text_add(t, i ? ", " : "");
+        if (n->type == NODE_MAP)
+            text_printf(t, "%s: ", n->pairs[i].key);
+        write_brief(t, n->type == NODE_MAP ? n->pairs[i].value : n->items[i]);
+    }
+    text_byte(t, n->type == NODE_MAP ? '}' : ']');
+}
+
+const char *node_brief(struct arena *a, const struct node *n, size_t most)
+{
+    struct text t;
+    text_init(&t, a);
+    write_brief(&t, n);
+    if (utf8_columns(text_str(&t)) <= most)
+        return text_str(&t);
+    return arena_printf(a, "%.*s...", (int)utf8_prefix(text_str(&t), most - 3), text_str(&t));
+}

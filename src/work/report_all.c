@@ -1,0 +1,177 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The whole register as one document: title block, summary, hazards, grid, decisions,
+ * inputs with their sources, what was left out, cautions. */
+#include "work/work.h"
+
+struct whole {
+    struct hazards hazards;
+    ARRAY(struct weighing *) decisions;
+    ARRAY(const char *) trees; /* decisions that are trees */
+};
+
+static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_error *e)
+{
+    const struct objects *all = &j->model->of[KIND_DECISION];
+    for (size_t i = 0; i < all->n; i++) {
+        const struct decision *d = all->at[i]->data;
+        struct weighing *x;
+        if (d->choose.n) {
+            *array_push(j->arena, &w->trees) = all->at[i]->id;
+            continue;
+        }
+        ohmen_status status = weigh_compile(j->figures, all->at[i]->id, &x, e);
+        if (status != OHMEN_OK)
+            return status;
+        *array_push(j->arena, &w->decisions) = x;
+    }
+    return OHMEN_OK;
+}
+
+/* --- summary --- */
+
+static void part_summary(struct job *j, struct whole *w)
+{
+    double sum = 0, most = 0;
+    const char *worst = NULL;
+    for (size_t i = 0; i < w->hazards.n; i++) {
+        const struct hazard_exports *x = w->hazards.at[i]->exports;
+        double risk = figure_value(j->figures, x->risk);
+        sum += risk;
+        if (!worst || risk > most) {
+            most = risk;
+            worst = w->hazards.at[i]->id;
+        }
+    }
+    report_heading(j->report, 2, "Summary");
+    if (worst)
+        report_note(
+            j->report, "summary",
+            "%zu hazards carry a risk of %s together. The largest is %s with %s, %.0f %% of it.",
+            w->hazards.n, money_text(j->arena, sum, unit_per_year(j)), worst,
+            money_text(j->arena, most, unit_per_year(j)), sum > 0 ? 100 * most / sum : 0);
+    for (size_t i = 0; i < w->decisions.n; i++) {
+        weigh_rank(j->figures, w->decisions.at[i]);
+        report_note(j->report, arena_printf(j->arena, "summary-%s", w->decisions.at[i]->id),
+                    "%s %s -- %s", w->decisions.at[i]->id, w->decisions.at[i]->decision->question,
+                    weighing_sentence(j, w->decisions.at[i]));
+    }
+}
+
+/* --- inputs --- */
+
+static void input_row(struct job *j, struct block *b, const struct compiled *c)
+{
+    struct report *r = j->report;
+    const struct figure *g = figure_at(j->figures, c->main);
+    struct row *row = block_row(r, b);
+    double shown;
+    const char *unit =
+        display_unit(j, figure_dim(j->figures, c->main), figure_value(j->figures, c->main), &shown);
+    const char *name = figure_name(j->figures, j->arena, c->main);
+    row_text(r, row, name);
+    row_text(r, row, object_name(c->object));
+    row_number(r, row, shown, name);
+    row_text(r, row, unit);
+    row_text(r, row, g->text ? g->text : figure_formula(j->figures, j->arena, c->main));
+    row_text(r, row, g->source ? g->source : "none");
+}
+
+static bool is_input(const struct compiled *c)
+{
+    return c->object && c->main != FIGURE_NONE && c->variant->n == 0 &&
+           (c->object->kind == KIND_VALUE || c->object->kind == KIND_RATE ||
+            c->object->kind == KIND_TYPE || c->object->kind == KIND_ELEMENT);
+}
+
+/* Values, rates, types and elements that the figures rest on, in that order. */
+static void part_inputs(struct job *j)
+{
+    struct report *r = j->report;
+    report_heading(r, 2, "What the figures rest on");
+    struct block *b = report_table(r, "inputs", NULL);
+    block_column(r, b, "input", "Input", "", STYLE_PLAIN);
+    block_column(r, b, "name", "What it is", "", STYLE_PLAIN)->keep = 1;
+    block_column(r, b, "value", "Mean", "", STYLE_PLAIN);
+    block_column(r, b, "unit", "Unit", "", STYLE_PLAIN);
+    block_column(r, b, "stated", "As stated", "", STYLE_PLAIN)->keep = 2;
+    block_column(r, b, "source", "Source", "", STYLE_PLAIN);
+    for (int k = 0; k < KIND_COUNT; k++)
+        for (size_t i = 0; i < j->model->of[k].n; i++) {
+            const struct compiled *c =
+                strmap_get(&j->figures->compiled_by_key, j->model->of[k].at[i]->id);
+            if (c && is_input(c))
+                input_row(j, b, c);
+        }
+}
+
+static void part_sources(struct job *j)
+{
+    struct report *r = j->report;
+    const struct objects *all = &j->model->of[KIND_SOURCE];
+    struct block *b = report_table(r, "sources", "Sources");
+    block_column(r, b, "source", "Source", "", STYLE_PLAIN);
+    block_column(r, b, "title", "Title", "", STYLE_PLAIN);
+    block_column(r, b, "reference", "Reference", "", STYLE_PLAIN)->keep = 1;
+    block_column(r, b, "verified", "Verified", "", STYLE_PLAIN)->keep = 1;
+    for (size_t i = 0; i < all->n; i++) {
+        const struct source *s = all->at[i]->data;
+        struct row *row = block_row(r, b);
+        row_text(r, row, all->at[i]->id);
+        row_text(r, row, s->title);
+        row_text(r, row, s->reference ? s->reference : "");
+        row_yes(r, row, s->verified);
+    }
+    if (all->n == 0)
+        r->blocks.n--;
+}
+
+/* --- the document --- */
+
+static void part_decisions(struct job *j, struct whole *w)
+{
+    for (size_t i = 0; i < w->decisions.n; i++) {
+        struct weighing *x = w->decisions.at[i];
+        report_heading(j->report, 2,
+                       arena_printf(j->arena, "%s: %s", x->id, x->decision->question));
+        part_weighing(j, x);
+        part_weighing_grid(j, x);
+    }
+    for (size_t i = 0; i < w->trees.n; i++)
+        report_note(j->report, arena_printf(j->arena, "tree-%s", w->trees.at[i]),
+                    "%s is a decision tree, which this version stores but does not evaluate.",
+                    w->trees.at[i]);
+}
+
+static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
+{
+    struct whole w = {0};
+    (void)ctx;
+    ohmen_status status = job_load_figures(j, e);
+    if (status == OHMEN_OK)
+        status = job_compile_hazards(j, &w.hazards, e);
+    if (status == OHMEN_OK)
+        status = compile_decisions(j, &w, e);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(j->figures, e);
+    if (status != OHMEN_OK)
+        return status;
+    part_title_block(j, e);
+    part_summary(j, &w);
+    report_heading(j->report, 2, "Hazards");
+    part_hazards(j, &w.hazards);
+    part_hazard_grid(j, &w.hazards);
+    part_decisions(j, &w);
+    part_inputs(j);
+    part_sources(j);
+    report_heading(j->report, 2, "What is left out, and cautions");
+    part_linearity(j, &w.hazards);
+    part_unused(j);
+    part_cautions(j);
+    return OHMEN_OK;
+}
+
+ohmen_status ohmen_report_all(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                              ohmen_error *e)
+{
+    return job_do(r, STORE_READ, q, run_report, NULL, out, e);
+}

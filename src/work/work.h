@@ -1,0 +1,107 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What the use cases share: one job, from an open register to a report.
+ *
+ * Every public function runs as a job in an arena of its own, which the report then
+ * owns: the connection to the file is opened in it, so that running out of memory
+ * anywhere closes everything. Private to src/work. */
+#ifndef WORK_WORK_H
+#define WORK_WORK_H
+
+#include "decide/weigh.h"
+#include "ohmen/ohmen.h"
+#include "report/block.h"
+#include "store/store.h"
+
+struct ohmen_register {
+    struct arena *arena;
+    const char *path;
+    ohmen_mode mode;
+};
+
+struct ohmen_report {
+    struct arena *arena;
+    struct report report;
+    ARRAY(const char *) diagnostics;
+    const char *text; /* of an export */
+    jmp_buf guard;    /* of the writers */
+};
+
+struct job {
+    struct arena *arena;
+    const char *path;
+    struct store *store;
+    uint64_t at; /* entry that is looked at */
+    ohmen_query query;
+    struct store_objects objects; /* as of `at` */
+    struct model *model;
+    struct figures *figures;
+    const struct variant *base;
+    struct ohmen_report *out;
+    struct report *report; /* &out->report */
+    bool keep_report;      /* the report goes out although the job fails */
+};
+
+/* Runs `run` as a job and hands out its report. query may be NULL. */
+typedef ohmen_status job_run(struct job *j, void *ctx, ohmen_error *e);
+ohmen_status job_do(ohmen_register *r, enum store_mode mode, const ohmen_query *query, job_run *run,
+                    void *ctx, ohmen_report **out, ohmen_error *e);
+
+/* Steps of a job, each including those before it. */
+ohmen_status job_load_objects(struct job *j, ohmen_error *e); /* at, objects */
+ohmen_status job_load_model(struct job *j, ohmen_error *e);   /* model */
+ohmen_status job_load_figures(struct job *j, ohmen_error *e); /* figures, base */
+
+/* Compiles every hazard that the query asks for, in byte order of ids. */
+struct hazards ARRAY_BODY(const struct compiled *);
+ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error *e);
+
+/* The canonical node of a stored object. */
+ohmen_status job_node(struct job *j, const struct store_object *o, struct node **out,
+                      ohmen_error *e);
+
+/* "section/id". */
+const char *job_path(struct arena *a, enum kind kind, const char *id);
+
+/* --- parts of reports (parts.c) --- */
+
+const char *object_name(const struct object *o); /* its name, title or question; "" */
+const char *unit_per_year(struct job *j);        /* "EUR/a" */
+/* "every category", or the perspective. */
+const char *perspective_words(struct job *j);
+
+void part_title_block(struct job *j, ohmen_error *e);
+void part_hazards(struct job *j, const struct hazards *h);
+void part_hazard_grid(struct job *j, const struct hazards *h);
+/* Notes: fields that are stored but not used, figures that are not linear in what is
+ * unknown, and the usual cautions. */
+void part_unused(struct job *j);
+void part_linearity(struct job *j, const struct hazards *h);
+void part_cautions(struct job *j);
+
+void part_weighing(struct job *j, struct weighing *w);
+void part_weighing_grid(struct job *j, struct weighing *w);
+/* One sentence: what is best, and what it is worth. */
+const char *weighing_sentence(struct job *j, const struct weighing *w);
+
+/* Criteria lines of the register for a grid; only those whose scope is a hazard. */
+void part_criteria_lines(struct job *j, struct block *grid);
+
+/* The place of a hazard's risk among the criteria: "acceptable", "tolerable",
+ * "intolerable", or "" without criteria. */
+const char *criteria_word(struct job *j, double risk);
+
+/* A value in a unit that people read: s, min, h or a for times, kWh for energy; otherwise
+ * base units. Returns the unit's name. */
+const char *display_unit(struct job *j, struct dim d, double value, double *shown);
+
+/* Short text of a canonical node: a scalar's text, or its flow form cut at `most` columns. */
+const char *node_brief(struct arena *a, const struct node *n, size_t most);
+
+/* Rows of the differences between two versions of an object (added: before NULL). */
+void part_differences(struct job *j, struct block *table, const char *lead, const char *id,
+                      const struct node *before, const struct node *after);
+/* The table that part_differences fills; `lead` names its first column, NULL: none. */
+struct block *part_difference_table(struct job *j, const char *key, const char *title,
+                                    const char *lead);
+
+#endif
