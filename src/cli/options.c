@@ -1,0 +1,50 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* The table of options. Owns the rows and nothing else; what an option does is
+ * decided where its value is read (layout.c, report.c, the commands). Invariant: one
+ * row for each option_id, in their order, which is also the order of help texts. */
+#include "cli/options.h"
+
+static const char *const colour_words[] = {"always", "never", "auto", 0};
+
+const struct option options[OPTION_COUNT] = {
+    [OPTION_HELP] = {"help", 'h', .help = "print the help text of the tool or of a command"},
+    [OPTION_VERSION] = {"version", .help = "print the version"},
+    [OPTION_REGISTER] = {"register", 'r', VALUE_FILE, "FILE",
+                         .help = "the register; else the environment variable OHMEN_REGISTER, else "
+                                 "the only *.ohmen file in the current folder"},
+    [OPTION_JSON] = {"json", .help = "print the report as one JSON object"},
+    [OPTION_CSV] = {"csv", .help = "print the tables of the report as CSV"},
+    [OPTION_WIDTH] = {"width", 0, VALUE_NUMBER, "N", 60, 200,
+                      .help = "columns of the text; else the width of the terminal (or COLUMNS, "
+                              "where that is set), at least 60 and at most 200; else 100"},
+    [OPTION_ASCII] = {"ascii", .help = "print ASCII only; chosen without this option too where "
+                                       "LC_ALL, LC_CTYPE or LANG (the first one that is set) "
+                                       "does not name UTF-8"},
+    [OPTION_COLOUR] = {"colour", 0, VALUE_WORD, "WHEN", .words = colour_words,
+                       .help = "colour the text: always, never, or auto, which is on a terminal "
+                               "unless NO_COLOR is set; auto if left out"},
+    [OPTION_AS_OF] = {"as-of", 0, VALUE_TEXT, "ENTRY|DATE",
+                      .help = "what the journal knew at an entry (its number), at the end of a "
+                              "day (2026-04-14) or at a second (2026-04-14T10:11:12Z), UTC"},
+    [OPTION_PERSPECTIVE] = {"perspective", 0, VALUE_TEXT, "NAME",
+                            .help = "whose damage counts: a perspective of the register, or all "
+                                    "for every category; else the register's own choice"},
+    [OPTION_SITE] = {"site", 0, VALUE_TEXT, "ID",
+                     .help = "only the hazards at this site and at the sites in it"},
+    [OPTION_WHY] = {"why", 0, VALUE_TEXT, "TEXT",
+                    .help = "the reason of the change, kept in the journal"},
+    [OPTION_BY] = {"by", 0, VALUE_TEXT, "TEXT",
+                   .help = "whose change it is, kept in the journal; else the environment "
+                           "variable OHMEN_AUTHOR, else the login name"},
+    [OPTION_DRY_RUN] = {"dry-run", .help = "say what would change and store nothing"},
+    [OPTION_OBSERVATIONS] = {"observations",
+                             .help = "the observations as CSV instead of the objects as YAML"},
+    [OPTION_TO] = {"to", 0, VALUE_FOLDER, "DIR",
+                   .help = "write register.yaml and observations.csv into this folder, which is "
+                           "made if there is none; both files, or neither"},
+    [OPTION_DEPTH] = {"depth", 0, VALUE_NUMBER, "N", 1, 1000,
+                      .help = "go down N levels; all levels if left out"},
+    [OPTION_MARKDOWN] = {"markdown", .help = "print docs/commands.md"},
+    [OPTION_COMPLETION] = {"completion", .help = "print the completion for bash; use it by: "
+                                                 "source <(ohmen help --completion)"},
+};

@@ -1,0 +1,382 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Hazards with their responses and outcomes, and the options that change them.
+ *
+ * Clearance times: the rows of a hazard lie between 40 ms and some seconds, a row that an
+ * option adds at 10 ms and a multiple of 0.1 ms of its own, so that no two are equal
+ * whatever is combined. */
+#include "model/tables_all.h"
+#include "registers_parts.h"
+
+#define OUTCOMES 4
+
+static const char *const outcome_names[OUTCOMES] = {"slow", "quick", "burnt", "dark"};
+static const char *const item_names[] = {"rebuild", "arc", "supply", "oil"};
+static const char *const categories[] = {"equipment", "lost-load", "penalty"};
+
+/* --- outcomes --- */
+
+/* Arc energy, a limit, or a step: what grows with the clearance time. */
+static const char *timed_damage(struct generator *g)
+{
+    switch (draw(g, 0, 2)) {
+    case 0: return arena_printf(g->arena, "%s kEUR/s * clearance-time", random_number(g, 1, 90));
+    case 1:
+        return arena_printf(g->arena, "lookup(clearance-time; 0.05 s -> %s; 0.3 s -> %s; %s s -> %s)",
+                            random_literal(g, MONEY), random_expression(g, MONEY, 1),
+                            random_number(g, 0.4, 2), random_literal(g, MONEY));
+    default:
+        return arena_printf(g->arena, "max(%s; 3 MEUR * (clearance-time / 1 s - 0.4)^2)",
+                            random_expression(g, MONEY, 1));
+    }
+}
+
+static struct node *damage_item(struct generator *g)
+{
+    struct node *m = map(g);
+    add_text(g, m, "category", random_pick(&g->random, categories));
+    if (chance(g, 3))
+        add_text(g, m, "is", timed_damage(g));
+    else
+        add(g, m, chance(g, 2) ? "is" : "varies", random_quantity(g, MONEY));
+    const struct table *outcomes = field_table(table_field(kinds[KIND_HAZARD].table, "outcomes"));
+    fill(g, m, field_table(table_field(outcomes, "damage")), NULL);
+    return m;
+}
+
+static struct node *outcome(struct generator *g)
+{
+    static const char *const skip[] = {"damage", NULL};
+    struct node *m = map(g), *damage = map(g);
+    for (unsigned i = 0, n = draw(g, 0, 3); i < n; i++)
+        add(g, damage, item_names[i], damage_item(g));
+    if (damage->n)
+        add(g, m, "damage", damage);
+    fill(g, m, field_table(table_field(kinds[KIND_HAZARD].table, "outcomes")), skip);
+    return m;
+}
+
+/* --- responses --- */
+
+static const char *end_name(struct generator *g, unsigned n_outcomes)
+{
+    return chance(g, 8) ? "none" : outcome_names[draw(g, 0, n_outcomes - 1)];
+}
+
+static const char *random_scheme(struct generator *g, unsigned around)
+{
+    bool scheme = g->ids[KIND_SCHEME].n && !chance(g, 4);
+    return near_id(g, scheme ? KIND_SCHEME : KIND_ELEMENT, around, scheme ? 6 : 12);
+}
+
+struct branching {
+    unsigned around, n_outcomes, depth;
+};
+
+static void end_branch(struct generator *g, struct node *m, struct branching b);
+
+/* Two or three branches; the last one is the rest, or shares of 100 % in all. */
+static struct node *split(struct generator *g, struct branching b)
+{
+    static const char *const names[] = {"fire", "arc-out", "held"};
+    struct node *rows = map(g);
+    unsigned n = draw(g, 2, 3);
+    bool rest = !chance(g, 4);
+    for (unsigned i = 0; i < n; i++) {
+        struct node *m = map(g);
+        const char *share = i + 1 == n ? "rest" : NULL;
+        if (!rest)
+            share = i + 1 < n ? "30 %" : n == 2 ? "70 %" : "40 %";
+        if (!share)
+            share = chance(g, 2)
+                        ? arena_printf(g->arena, "%u %%", draw(g, 1, 45))
+                        : arena_printf(g->arena, "0.4 * (%s)", random_expression(g, PROBABILITY, 1));
+        add_text(g, m, "share", share);
+        end_branch(g, m, b);
+        add(g, rows, names[i], m);
+    }
+    return rows;
+}
+
+static void end_branch(struct generator *g, struct node *m, struct branching b)
+{
+    unsigned form = b.depth ? draw(g, 0, 3) : 0;
+    b.depth -= b.depth > 0;
+    if (form == 1) {
+        add(g, m, "split", split(g, b));
+    } else if (form == 2) {
+        struct node *yes = map(g), *no = map(g);
+        end_branch(g, yes, b);
+        end_branch(g, no, b);
+        add_text(g, m, "if-works", random_scheme(g, b.around));
+        add(g, m, "yes", yes);
+        add(g, m, "no", no);
+    } else {
+        add_text(g, m, "outcome", end_name(g, b.n_outcomes));
+    }
+}
+
+static const char *row_time(struct generator *g, unsigned i)
+{
+    unsigned ms = 40 + 400 * i + draw(g, 0, 380);
+    switch (draw(g, 0, 2)) {
+    case 0: return arena_printf(g->arena, "%u ms", ms);
+    case 1: return arena_printf(g->arena, "%u.%03u s", ms / 1000, ms % 1000);
+    default: return arena_printf(g->arena, "%u s / 1000", ms);
+    }
+}
+
+static struct node *response_row(struct generator *g, struct branching b, const char *in)
+{
+    const struct table *row = field_table(table_field(kinds[KIND_HAZARD].table, "response"));
+    const struct field *sees = table_field(row, "sees");
+    struct node *m = map(g);
+    add_text(g, m, "cleared-by", random_scheme(g, b.around));
+    add_text(g, m, "in", in);
+    if (chance(g, 2)) {
+        struct node *share = map(g);
+        add(g, share, "is", random_quantity(g, PROBABILITY));
+        fill(g, share, sees->table, NULL);
+        bool is_short = share->n == 1 && chance(g, 2);
+        add(g, m, "sees", is_short ? share->pairs[0].value : share);
+    }
+    end_branch(g, m, b);
+    return m;
+}
+
+/* Names whose order is not that of the times. */
+static struct node *response(struct generator *g, struct branching b)
+{
+    struct node *rows = map(g), *last = map(g);
+    unsigned n = draw(g, 0, g->shape.rows), shift = draw(g, 0, 4);
+    for (unsigned i = 0; i < n; i++) {
+        const char *key = arena_printf(g->arena, "row-%c", (char)('a' + (2 * i + shift) % 5));
+        if (!node_get(rows, key))
+            add(g, rows, key, response_row(g, b, row_time(g, i)));
+    }
+    add_text(g, last, "in", arena_printf(g->arena, "%u s", draw(g, 30, 90)));
+    end_branch(g, last, b);
+    add(g, rows, "never", last);
+    return rows;
+}
+
+/* --- hazards --- */
+
+static const char *random_frequency(struct generator *g, unsigned number)
+{
+    size_t k = g->ids[KIND_RATE].n ? random_index(&g->random, g->ids[KIND_RATE].n) : 0;
+    const char *rate = g->ids[KIND_RATE].n ? g->ids[KIND_RATE].at[k] : "0.4 per a";
+    const char *per = g->ids[KIND_RATE].n ? g->rate_per.at[k] : "a";
+    const char *amount = text_starts(per, "section") ? " section"
+                         : text_starts(per, "bay")   ? " bay"
+                         : text_starts(per, "km")    ? " km"
+                                                     : "";
+    if (number > 0 && chance(g, 6))
+        return arena_printf(g->arena, "0.3 * frequency(%s)",
+                            g->ids[KIND_HAZARD].at[random_index(&g->random, number)]);
+    if (chance(g, 6))
+        return random_expression(g, FREQUENCY, g->shape.depth);
+    const char *plain =
+        arena_printf(g->arena, "%s%s * %s", random_number(g, 0.4, 20), amount, rate);
+    return chance(g, 2) ? plain
+                        : arena_printf(g->arena, "%s * (%s)", plain,
+                                       random_expression(g, PROBABILITY, 2));
+}
+
+static struct node *hazard(struct generator *g, unsigned number)
+{
+    static const char *const skip[] = {"frequency", "response", "outcomes", NULL};
+    struct node *m = map(g), *outcomes = map(g);
+    struct branching b = {number, draw(g, 1, OUTCOMES), 2};
+    for (unsigned i = 0; i < b.n_outcomes; i++)
+        add(g, outcomes, outcome_names[i], outcome(g));
+    add_text(g, m, "frequency", random_frequency(g, number));
+    add(g, m, "response", response(g, b));
+    add(g, m, "outcomes", outcomes);
+    fill(g, m, kinds[KIND_HAZARD].table, skip);
+    return m;
+}
+
+void add_hazards(struct generator *g)
+{
+    struct node *section = map(g);
+    for (unsigned i = 0; i < g->ids[KIND_HAZARD].n; i++)
+        add(g, section, g->ids[KIND_HAZARD].at[i], hazard(g, i));
+    add(g, g->root, "hazards", section);
+}
+
+/* --- changes --- */
+
+/* One change under construction; what it touches is kept, so that options that require
+ * one another never contradict. */
+struct changing {
+    struct node *elements, *schemes, *hazards, *rates;
+    struct node *touched; /* ids */
+    unsigned number;
+};
+
+static bool touch(struct generator *g, struct changing *c, const char *id)
+{
+    if (node_get(c->touched, id))
+        return false;
+    add_text(g, c->touched, id, "");
+    return true;
+}
+
+static const char *factor(struct generator *g)
+{
+    static const char *const forms[] = {"0.%02u * was", "was * 0.%02u", "was / 1.%02u"};
+    return arena_printf(g->arena, forms[draw(g, 0, 2)], draw(g, 3, 98));
+}
+
+static void scale_rate(struct generator *g, struct changing *c)
+{
+    const char *id = random_id(g, KIND_RATE);
+    const struct node *rate = node_get(node_get(g->root, "rates"), id);
+    if (!touch(g, c, id))
+        return;
+    struct node *is = pair_of(g, "is", scalar(g, factor(g)));
+    const struct node *prior = node_get(rate, "prior");
+    const char *key = prior && node_get(prior, "median") ? "median" : "mean";
+    add(g, c->rates, id,
+        prior ? pair_of(g, "prior", pair_of(g, key, scalar(g, factor(g)))) : is);
+}
+
+/* Better by a factor, or by a number of its own in place of counts. */
+static void change_element(struct generator *g, struct changing *c)
+{
+    bool scale = g->own.n && chance(g, 2);
+    const char *id = scale ? g->own.at[random_index(&g->random, g->own.n)]
+                           : random_id(g, KIND_ELEMENT);
+    struct node *record = map(g);
+    if (!touch(g, c, id))
+        return;
+    add_text(g, record, "is", scale ? factor(g) : random_literal(g, PROBABILITY));
+    if (!scale) {
+        add_text(g, record, "prior", "no");
+        add_text(g, record, "failures", "no");
+        add_text(g, record, "demands", "no");
+    }
+    add(g, c->elements, id, pair_of(g, "per-demand", record));
+}
+
+static void fit_absent(struct generator *g, struct changing *c)
+{
+    if (!g->absent.n)
+        return;
+    const char *id = g->absent.at[random_index(&g->random, g->absent.n)];
+    struct node *parts = list(g);
+    if (!touch(g, c, id))
+        return;
+    node_push(g->arena, parts, scalar(g, random_id(g, KIND_ELEMENT)));
+    node_push(g->arena, parts, scalar(g, random_id(g, KIND_ELEMENT)));
+    add(g, c->schemes, id, pair_of(g, "works", pair_of(g, chance(g, 2) ? "all" : "any", parts)));
+}
+
+/* A new element in a new scheme that clears first, in a new row. */
+static struct node *new_row(struct generator *g, struct changing *c, unsigned around)
+{
+    const char *element = arena_printf(g->arena, "N-%u", c->number + 1);
+    const char *scheme = arena_printf(g->arena, "NS-%u", c->number + 1);
+    struct node *m = map(g), *parts = list(g), *row = map(g);
+    add(g, m, "per-demand", random_quantity(g, PROBABILITY));
+    add_text(g, m, "kind", "relay");
+    add(g, c->elements, element, m);
+    node_push(g->arena, parts, scalar(g, element));
+    node_push(g->arena, parts, scalar(g, near_id(g, KIND_ELEMENT, around, 12)));
+    add(g, c->schemes, scheme, pair_of(g, "works", pair_of(g, "all", parts)));
+    add_text(g, row, "cleared-by", scheme);
+    add_text(g, row, "in", arena_printf(g->arena, "10.%04u ms", c->number % 10000));
+    add_text(g, row, "outcome", outcome_names[0]);
+    return pair_of(g, arena_printf(g->arena, "new-%u", c->number + 1), row);
+}
+
+/* What may be said of an item of the first outcome: scaled, or gone. */
+static struct node *changed_damage(struct generator *g, const struct node *hazard_node)
+{
+    const struct node *damage =
+        node_get(node_get(node_get(hazard_node, "outcomes"), outcome_names[0]), "damage");
+    if (!damage)
+        return NULL;
+    const struct pair *item = &damage->pairs[random_index(&g->random, damage->n)];
+    const char *key = node_get(item->value, "is") ? "is" : "varies";
+    struct node *changed =
+        chance(g, 4) ? scalar(g, "no") : pair_of(g, key, scalar(g, factor(g)));
+    return pair_of(g, outcome_names[0], pair_of(g, "damage", pair_of(g, item->key, changed)));
+}
+
+static void change_hazard(struct generator *g, struct changing *c)
+{
+    unsigned k = (unsigned)random_index(&g->random, g->ids[KIND_HAZARD].n);
+    const char *id = g->ids[KIND_HAZARD].at[k];
+    struct node *m = map(g);
+    struct node *damage = changed_damage(g, node_get(node_get(g->root, "hazards"), id));
+    if (!touch(g, c, id))
+        return;
+    if (chance(g, 2) || !damage)
+        add(g, m, "response", new_row(g, c, k));
+    if (damage && chance(g, 2))
+        add(g, m, "outcomes", damage);
+    if (m->n == 0)
+        add_text(g, m, "frequency", factor(g));
+    add(g, c->hazards, id, m);
+}
+
+static struct node *option_change(struct generator *g, struct changing *c)
+{
+    struct node *change = map(g);
+    if (g->ids[KIND_HAZARD].n && !chance(g, 4))
+        change_hazard(g, c);
+    if (g->ids[KIND_ELEMENT].n && chance(g, 2))
+        change_element(g, c);
+    if (g->ids[KIND_RATE].n && chance(g, 3))
+        scale_rate(g, c);
+    if (chance(g, 3))
+        fit_absent(g, c);
+    if (c->elements->n)
+        add(g, change, "elements", c->elements);
+    if (c->schemes->n)
+        add(g, change, "schemes", c->schemes);
+    if (c->hazards->n)
+        add(g, change, "hazards", c->hazards);
+    if (c->rates->n)
+        add(g, change, "rates", c->rates);
+    return change;
+}
+
+/* --- options --- */
+
+static bool are_apart(const struct node *p, const struct node *q)
+{
+    for (size_t i = 0; i < p->n; i++)
+        if (node_get(q, p->pairs[i].key))
+            return false;
+    return true;
+}
+
+/* An earlier option that it needs or cannot stand. */
+static void relate(struct generator *g, struct node *m, const struct changing *all, unsigned i)
+{
+    unsigned k = i ? draw(g, 0, i - 1) : 0;
+    if (!i || !chance(g, 3))
+        return;
+    struct node *names = list(g);
+    node_push(g->arena, names, scalar(g, g->ids[KIND_OPTION].at[k]));
+    add(g, m, are_apart(all[i].touched, all[k].touched) && chance(g, 2) ? "requires" : "excludes",
+        names);
+}
+
+void add_options(struct generator *g)
+{
+    static const char *const skip[] = {"excludes", "requires", "change", NULL};
+    size_t n = g->ids[KIND_OPTION].n;
+    struct changing *all = NEW_ARRAY(g->arena, n, struct changing);
+    struct node *section = map(g);
+    for (unsigned i = 0; i < n; i++) {
+        all[i] = (struct changing){map(g), map(g), map(g), map(g), map(g), i};
+        struct node *m = pair_of(g, "change", option_change(g, &all[i]));
+        fill(g, m, kinds[KIND_OPTION].table, skip);
+        relate(g, m, all, i);
+        add(g, section, g->ids[KIND_OPTION].at[i], m);
+    }
+    add(g, g->root, "options", section);
+}

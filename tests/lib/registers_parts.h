@@ -1,0 +1,81 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What the files of the register generator share. Private to registers*.c. */
+#ifndef TESTS_REGISTERS_PARTS_H
+#define TESTS_REGISTERS_PARTS_H
+
+#include "base/text.h"
+#include "registers.h"
+
+struct ids ARRAY_BODY(const char *);
+
+/* A named value: what it is, and whether it is a certain number. */
+struct known_value {
+    const char *id;
+    enum field_dim dim;
+};
+
+struct generator {
+    struct arena *arena;
+    struct random random;
+    struct register_shape shape;
+    struct node *root;
+    struct ids ids[KIND_COUNT]; /* those that references may name */
+    ARRAY(struct known_value) values;
+    struct ids rate_per; /* of each usable rate: "section a", "km a", "a" */
+    struct ids own;      /* elements with a plain probability of their own */
+    struct ids absent;   /* schemes that are absent */
+};
+
+/* --- drawing --- */
+
+/* One chance in n. */
+bool chance(struct generator *g, unsigned n);
+unsigned draw(struct generator *g, unsigned low, unsigned high);
+/* Three digits, evenly in the logarithm; lo > 0. */
+const char *random_number(struct generator *g, double lo, double hi);
+const char *random_text(struct generator *g);
+const char *random_date(struct generator *g);
+/* One of the ids of a kind; one of those near `around` (a number of an object) where
+ * there are many, so that large registers fall into neighbourhoods. */
+const char *random_id(struct generator *g, enum kind kind);
+const char *near_id(struct generator *g, enum kind kind, unsigned around, unsigned width);
+
+/* --- nodes --- */
+
+struct node *scalar(struct generator *g, const char *text);
+struct node *map(struct generator *g);
+struct node *list(struct generator *g);
+void add(struct generator *g, struct node *m, const char *key, struct node *value);
+void add_text(struct generator *g, struct node *m, const char *key, const char *text);
+/* {key: value} */
+struct node *pair_of(struct generator *g, const char *key, struct node *value);
+
+/* --- quantities --- */
+
+/* A literal; not negative, a probability at most 1. */
+const char *random_literal(struct generator *g, enum field_dim dim);
+/* An expression of that dimension, not negative, a probability at most 1. */
+const char *random_expression(struct generator *g, enum field_dim dim, unsigned depth);
+/* An expression, a range or a distribution. */
+struct node *random_quantity(struct generator *g, enum field_dim dim);
+
+/* --- filling by the field tables (registers_fill.c) --- */
+
+/* Adds what the table requires and what chance wants of the rest, but no key of a group
+ * and none of `skip` (NULL-terminated). */
+void fill(struct generator *g, struct node *m, const struct table *t, const char *const *skip);
+/* A probability of failure on demand that can be evaluated. */
+struct node *random_record(struct generator *g);
+/* A structure over the elements and the earlier schemes around number `around`. */
+struct node *random_structure(struct generator *g, unsigned around, unsigned depth);
+void add_states(struct generator *g);
+void add_plans(struct generator *g);
+void add_trees(struct generator *g);
+void add_stored(struct generator *g);
+
+/* --- hazards and options (registers_hazard.c) --- */
+
+void add_hazards(struct generator *g);
+void add_options(struct generator *g);
+
+#endif
