@@ -94,6 +94,9 @@ struct block {
                             two blanks are kept as they are */
     ARRAY(struct column) columns; /* BLOCK_TABLE; BLOCK_PAIRS has two: name, value */
     ARRAY(struct row) rows;
+    bool entries;        /* BLOCK_TABLE: in text each row is an entry: a line of the columns that
+                            may never be dropped, and below it, indented, the others from keep 4
+                            on that are not empty, each behind its head */
     struct grid *grid;
 };
 

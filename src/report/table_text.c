@@ -164,9 +164,36 @@ static void write_records(struct page *p, const struct table_shape *t)
     }
 }
 
+enum { ENTRY_INDENT = 4, ENTRY_KEEP = 4 };
+
+/* What always stands on one line, then what explains it. */
+static void write_entry(struct page *p, const struct block *b, const struct row *row)
+{
+    struct text lead;
+    text_init(&lead, p->arena);
+    for (size_t j = 0; j < b->columns.n; j++) {
+        const struct column *c = &b->columns.at[j];
+        const char *words = cell_words(p, &row->at[j], c->style, c->unit);
+        if (c->keep == 0 && *words)
+            text_printf(&lead, "%s%s", lead.n ? "  " : "", words);
+    }
+    page_paragraph(p, text_str(&lead), 0, INK_HEAD);
+    for (size_t j = 0; j < b->columns.n; j++) {
+        const struct column *c = &b->columns.at[j];
+        const char *words = cell_words(p, &row->at[j], c->style, c->unit);
+        if (c->keep >= ENTRY_KEEP && *words)
+            page_paragraph(p, arena_printf(p->arena, "%s: %s", page_clean(p, c->head), words),
+                           ENTRY_INDENT, INK_PLAIN);
+    }
+}
+
 void page_table(struct page *p, const struct block *b)
 {
     if (b->columns.n == 0)
+        return;
+    for (size_t i = 0; b->entries && i < b->rows.n; i++)
+        write_entry(p, b, &b->rows.at[i]);
+    if (b->entries)
         return;
     struct table_shape t = table_shape_of(p, b);
     if (!t.fits) {

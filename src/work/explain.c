@@ -41,13 +41,11 @@ static void collect(struct explaining *x, figure_id root)
 /* "NUREG-6928: Industry-average performance ..., table 5-1"; "none" for a leaf without. */
 static const char *source_words(struct job *j, figure_id id)
 {
-    const struct figure *g = figure_at(j->figures, id);
-    struct figure_ids inputs = {0};
-    figure_inputs(j->figures, j->arena, id, &inputs);
-    if (!g->source)
-        return inputs.n ? "" : "none";
-    const struct source *s = model_get(j->model, KIND_SOURCE, g->source);
-    return arena_printf(j->arena, "%s: %s%s%s", g->source, s->title, s->reference ? ", " : "",
+    const char *source = figure_source(j, id);
+    const struct source *s = model_get(j->model, KIND_SOURCE, source);
+    if (!s)
+        return source;
+    return arena_printf(j->arena, "%s: %s%s%s", source, s->title, s->reference ? ", " : "",
                         s->reference ? s->reference : "");
 }
 
@@ -55,8 +53,9 @@ static const char *shown_value(struct job *j, figure_id id)
 {
     char number[32];
     double shown;
-    const char *unit =
-        display_unit(j, figure_dim(j->figures, id), figure_value(j->figures, id), &shown);
+    const char *unit = figure_display(j, id, &shown);
+    if (text_starts(unit, j->model->settings->currency))
+        return money_text(j->arena, shown, unit);
     number_text(number, shown, STYLE_PLAIN);
     return arena_printf(j->arena, "%s%s%s", number, *unit ? " " : "", unit);
 }
@@ -79,6 +78,7 @@ static void explain_table(struct explaining *x)
 {
     struct report *r = x->job->report;
     struct block *b = report_table(r, "derivation", "Derivation");
+    b->entries = true;
     block_column(r, b, "level", "Level", "", STYLE_PLAIN)->keep = 3;
     block_column(r, b, "figure", "Figure", "", STYLE_PLAIN);
     block_column(r, b, "value", "Value", "", STYLE_PLAIN)->right = true;

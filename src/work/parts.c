@@ -244,23 +244,7 @@ void part_cautions(struct job *j)
         "first.");
 }
 
-/* --- values and nodes for people --- */
-
-const char *display_unit(struct job *j, struct dim d, double value, double *shown)
-{
-    double hours = value * 8760;
-    if (dim_equal(d, dim_time) && value != 0 && fabs(value) < 1) {
-        bool seconds = fabs(hours) < 1.0 / 60, minutes = fabs(hours) < 1;
-        *shown = seconds ? hours * 3600 : minutes ? hours * 60 : hours;
-        return seconds ? "s" : minutes ? "min" : "h";
-    }
-    if (dim_equal(d, dim_energy)) {
-        *shown = hours;
-        return "kWh";
-    }
-    *shown = value;
-    return dim_unit(j->arena, &j->model->units, d);
-}
+/* --- nodes for people --- */
 
 static void write_brief(struct text *t, const struct node *n)
 {

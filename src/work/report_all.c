@@ -65,15 +65,14 @@ static void input_row(struct job *j, struct block *b, const struct compiled *c)
     const struct figure *g = figure_at(j->figures, c->main);
     struct row *row = block_row(r, b);
     double shown;
-    const char *unit =
-        display_unit(j, figure_dim(j->figures, c->main), figure_value(j->figures, c->main), &shown);
+    const char *unit = figure_display(j, c->main, &shown);
     const char *name = figure_name(j->figures, j->arena, c->main);
     row_text(r, row, name);
     row_text(r, row, object_name(c->object));
     row_number(r, row, shown, name);
     row_text(r, row, unit);
     row_text(r, row, g->text ? g->text : figure_formula(j->figures, j->arena, c->main));
-    row_text(r, row, g->source ? g->source : "none");
+    row_text(r, row, figure_source(j, c->main));
 }
 
 static bool is_input(const struct compiled *c)

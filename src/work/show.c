@@ -136,8 +136,7 @@ static void figures_pairs(struct job *j, const struct compiled *c)
         struct row *row = block_row(r, b);
         double shown;
         const char *name = figure_name(j->figures, j->arena, i);
-        const char *unit =
-            display_unit(j, figure_dim(j->figures, i), figure_value(j->figures, i), &shown);
+        const char *unit = figure_display(j, i, &shown);
         row_text(r, row, name);
         row_number(r, row, shown, name);
         row_text(r, row, unit);

@@ -1,6 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* A decision weighed: its alternatives in order of worth, what they do to each hazard,
  * and the grid with an arrow from today's point to each option's. */
+#include <math.h>
+
 #include "work/work.h"
 
 static void money_cell(struct job *j, struct row *row, figure_id id)
@@ -31,14 +33,16 @@ const char *weighing_sentence(struct job *j, const struct weighing *w)
         return arena_printf(j->arena, "Do nothing: no option is worth its money over %g years.",
                             w->horizon);
     const char *worth = money_text(j->arena, net_of(j, best), currency);
+    const char *sentence =
+        arena_printf(j->arena, "%s: worth %s more than doing nothing over %g years", best->name,
+                     worth, w->horizon);
     const struct alternative *second =
-        w->alternatives.n > 1 ? &w->alternatives.at[w->order[1]] : NULL;
+        &w->alternatives.at[w->order[1]]; /* doing nothing at least */
+    if (second->n == 0)
+        return arena_printf(j->arena, "%s; no other option is worth its money.", sentence);
     const char *lead = money_text(j->arena, net_of(j, best) - net_of(j, second), currency);
-    return arena_printf(
-        j->arena,
-        "%s: worth %s more than doing nothing over %g years, and %s more than the next "
-        "alternative (%s).",
-        best->name, worth, w->horizon, lead, alternative_words(second));
+    return arena_printf(j->arena, "%s, and %s more than the next alternative, %s.", sentence, lead,
+                        second->name);
 }
 
 static void alternative_row(struct job *j, struct block *b, const struct alternative *x)
@@ -215,8 +219,30 @@ static int add_point(struct job *j, struct block *b, const char *label, const ch
     return (int)b->grid->marks.n - 1;
 }
 
+/* Marks that would lie less than this apart (in either direction) are not drawn twice. */
+#define LEAST_MOVE 0.01
+
+static bool moves(const struct job *j, const struct compiled *from, const struct compiled *to)
+{
+    const struct hazard_exports *p = from->exports, *q = to->exports;
+    double f0 = figure_value(j->figures, p->damaging), f1 = figure_value(j->figures, q->damaging);
+    double d0 = figure_value(j->figures, p->damage), d1 = figure_value(j->figures, q->damage);
+    return fabs(f1 - f0) > LEAST_MOVE * f0 || fabs(d1 - d0) > LEAST_MOVE * d0;
+}
+
+static void unmoved_note(struct job *j, size_t n)
+{
+    if (n)
+        report_note(
+            j->report, "unmoved",
+            "Not drawn: %zu point%s that an option moves by less than 1 %%; the table of hazards "
+            "has them.",
+            n, n == 1 ? "" : "s");
+}
+
 void part_weighing_grid(struct job *j, struct weighing *w)
 {
+    size_t unmoved = 0;
     struct block *b = report_grid(j->report, "grid", "From today's point to each option's",
                                   j->model->settings->currency);
     weigh_rank(j->figures, w);
@@ -232,11 +258,16 @@ void part_weighing_grid(struct job *j, struct weighing *w)
             const struct alternative *x = &w->alternatives.at[k];
             if (!is_shown(w, k) || !x->hazards[i] || x->hazards[i] == h->now)
                 continue;
+            if (h->now && !moves(j, h->now, x->hazards[i])) {
+                unmoved++;
+                continue;
+            }
             add_point(j, b, arena_printf(j->arena, "%zu%c", i + 1, letter),
                       arena_printf(j->arena, "%s with %s", h->id, x->name), x->hazards[i], today);
             letter = letter < 'z' ? (char)(letter + 1) : 'z';
         }
     }
+    unmoved_note(j, unmoved);
 }
 
 /* --- the use case --- */

@@ -94,6 +94,13 @@ const char *criteria_word(struct job *j, double risk);
  * base units. Returns the unit's name. */
 const char *display_unit(struct job *j, struct dim d, double value, double *shown);
 
+/* The same for a figure: a stated quantity is shown in the unit that its author used. */
+const char *figure_display(struct job *j, figure_id id, double *shown);
+
+/* Where a figure comes from: its source, that of the figure that it merely repeats, "none" for
+ * a leaf without one, "" for a formula. */
+const char *figure_source(struct job *j, figure_id id);
+
 /* Short text of a canonical node: a scalar's text, or its flow form cut at `most` columns. */
 const char *node_brief(struct arena *a, const struct node *n, size_t most);
 

@@ -1,0 +1,90 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Values for people: in which unit a figure is shown, and where it comes from. */
+#include <math.h>
+#include <string.h>
+
+#include "work/work.h"
+
+const char *display_unit(struct job *j, struct dim d, double value, double *shown)
+{
+    double hours = value * 8760;
+    if (dim_equal(d, dim_time) && value != 0 && fabs(value) < 1) {
+        bool seconds = fabs(hours) < 1.0 / 60, minutes = fabs(hours) < 1;
+        *shown = seconds ? hours * 3600 : minutes ? hours * 60 : hours;
+        return seconds ? "s" : minutes ? "min" : "h";
+    }
+    if (dim_equal(d, dim_energy)) {
+        *shown = hours;
+        return "kWh";
+    }
+    *shown = value;
+    return dim_unit(j->arena, &j->model->units, d);
+}
+
+static bool is_digit(char c)
+{
+    return c >= '0' && c <= '9';
+}
+
+/* Where a literal that begins at s ends at the latest. */
+static size_t literal_length(const char *s)
+{
+    static const char *const ends[] = {",", ";", ")", " ..", " as ", " * ", " + ", " - ", " / "};
+    size_t n = strlen(s);
+    for (size_t i = 0; i < sizeof ends / sizeof *ends; i++) {
+        const char *end = strstr(s, ends[i]);
+        if (end && (size_t)(end - s) < n)
+            n = (size_t)(end - s);
+    }
+    return n;
+}
+
+/* The unit of the last literal in a text that has the dimension wanted: "kEUR/s" of
+ * "uniform, from 30 kEUR/s, to 100 kEUR/s". NULL where there is none. */
+static const char *stated_unit(struct job *j, const char *text, struct dim d, double *factor)
+{
+    struct diags quiet;
+    const char *unit = NULL;
+    diags_init(&quiet, j->arena);
+    for (const char *p = text; *p; p++) {
+        bool begins = is_digit(*p) && (p == text || p[-1] == ' ' || p[-1] == '(');
+        if (!begins)
+            continue;
+        const char *literal = arena_strn(j->arena, p, literal_length(p));
+        struct expr *e = expr_parse(j->arena, &j->model->units, literal,
+                                    (struct place){.file = "", .line = 1, .column = 1}, &quiet);
+        const char *blank = e && e->op == EXPR_LITERAL ? strchr(e->text, ' ') : NULL;
+        double number;
+        if (!blank || !dim_equal(e->dim, d) || !text_to_double(e->text, blank, &number) ||
+            number == 0)
+            continue;
+        unit = blank + 1;
+        *factor = e->value / number;
+    }
+    return unit;
+}
+
+const char *figure_display(struct job *j, figure_id id, double *shown)
+{
+    const struct figure *g = figure_at(j->figures, id);
+    struct dim d = figure_dim(j->figures, id);
+    double value = figure_value(j->figures, id), factor;
+    const char *unit = g->text ? stated_unit(j, g->text, d, &factor) : NULL;
+    if (!unit)
+        return display_unit(j, d, value, shown);
+    *shown = value / factor;
+    return unit;
+}
+
+const char *figure_source(struct job *j, figure_id id)
+{
+    const struct figure *g = figure_at(j->figures, id);
+    figure_id first = j->figures->of_node.at[g->node];
+    struct figure_ids inputs = {0};
+    if (!g->source && first != id)
+        return figure_source(j, first);
+    if (g->source)
+        return g->source;
+    figure_inputs(j->figures, j->arena, id, &inputs);
+    return inputs.n ? "" : "none";
+}
