@@ -4,6 +4,11 @@
 
 #include <string.h>
 
+void array_zero(void *p, size_t n)
+{
+    memset(p, 0, n);
+}
+
 void *array_room(struct arena *a, void *at, size_t n, size_t *cap, size_t more, size_t size)
 {
     if (more <= *cap - n)

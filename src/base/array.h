@@ -21,11 +21,16 @@
 /* Makes room for `more` further elements of `size` bytes; returns the (moved) base. */
 void *array_room(struct arena *a, void *at, size_t n, size_t *cap, size_t more, size_t size);
 
+/* Zeroes n bytes: room may hold what stood there before the array was cut shorter. */
+void array_zero(void *p, size_t n);
+
 #define array_reserve(arena, arr, more) \
     ((arr)->at = array_room((arena), (arr)->at, (arr)->n, &(arr)->cap, (more), sizeof *(arr)->at))
 
 /* A pointer to a new, zeroed last element. */
-#define array_push(arena, arr) (array_reserve((arena), (arr), 1), &(arr)->at[(arr)->n++])
+#define array_push(arena, arr)                                                       \
+    (array_reserve((arena), (arr), 1), array_zero(&(arr)->at[(arr)->n], sizeof *(arr)->at), \
+     &(arr)->at[(arr)->n++])
 
 #define array_last(arr) (&(arr)->at[(arr)->n - 1])
 

@@ -95,7 +95,7 @@ static void consider(struct figures *f, const struct names *options, const struc
     if (!why)
         *array_push(f->arena, &w->alternatives) =
             (struct alternative){.name = name, .n = n, .options = ids};
-    else if (n <= 2) /* larger sets fail for the same reasons */
+    else if (n == 1 || (n == 2 && p->why[set[0] * p->n + set[1]])) /* larger sets: the same */
         *array_push(f->arena, &w->left_out) = (struct not_possible){name, why};
 }
 

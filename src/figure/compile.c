@@ -121,8 +121,9 @@ static ohmen_status refuse_unsupported(struct figures *f, const struct object *o
 }
 
 /* A leaf or an expression as the main figure of its unit. */
-static struct compiled *compile_main(struct figures *f, const struct variant *v, const struct object *o,
-                                 enum property p, const struct quantity *q, const char *source)
+static struct compiled *compile_main(struct figures *f, const struct variant *v,
+                                     const struct object *o, enum property p,
+                                     const struct quantity *q, const char *source)
 {
     struct building b;
     compiled_begin(f, v, o, o->id, &b);

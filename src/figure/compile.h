@@ -16,12 +16,12 @@ struct building {
 /* Opens the section of a new unit and registers it under its key; close with
  * compiled_end. All that the unit reads must have been compiled before. */
 void compiled_begin(struct figures *f, const struct variant *projected, const struct object *o,
-                const char *id, struct building *b);
+                    const char *id, struct building *b);
 void compiled_end(struct building *b);
 
 /* Registers a figure of the unit under construction. */
 figure_id compiled_add(struct building *b, enum property p, const char *q1, const char *q2,
-                   node_id node, const char *source, const char *text);
+                       node_id node, const char *source, const char *text);
 
 /* The options of a variant that reach an object, as a variant. */
 ohmen_status variant_project(struct figures *f, const struct variant *v, const char *id,
@@ -70,8 +70,9 @@ void wiring_order(struct wiring *w, const char *id);
 /* "works" as a function of the elements' failures. */
 bfun wiring_works(struct wiring *w, const char *id);
 bfun wiring_sees(struct wiring *w, const char *row);
-/* "NH-CT1 and (NH-51A or NH-51B)": a scheme in the names of its elements. */
-void wiring_text(struct text *t, struct figures *f, const struct model *m, const char *id);
+/* "NH-CT1 and (NH-51A or NH-51B)": a scheme in the names of its elements; in parentheses
+ * when it is composite and not `bare`. */
+void wiring_text(struct text *t, const struct model *m, const char *id, bool bare);
 /* Nodes of the variables' probabilities: failures of elements, shares of `sees`. */
 node_id wiring_argument(struct building *b, const struct wiring *w, size_t variable);
 

@@ -100,8 +100,8 @@ static void grow_split(struct tree *t, const struct rows *split, const struct sp
         below.path = arena_printf(t->arena, "%s/%s", at->path, split->keys[i]);
         node_id share = rest ? rest_share(t, split, shares) : shares[i];
         const char *reads = rest ? NULL : quantity_reads(b->figures, child->share);
-        compiled_add(b, PROPERTY_SHARE, dotted(t->arena, below.path), NULL, share, t->hazard->source,
-                 reads);
+        compiled_add(b, PROPERTY_SHARE, dotted(t->arena, below.path), NULL, share,
+                     t->hazard->source, reads);
         below.share = at->share == NODE_NONE
                           ? share
                           : graph_op2(b->figures->graph, OP_MULTIPLY, at->share, share);
@@ -143,7 +143,7 @@ static bfun row_clears(struct tree *t, const struct response_row *row, const cha
         return works;
     node_id share = compile_quantity(b, row->sees->is);
     compiled_add(b, PROPERTY_SHARE, key, "sees", share, row->sees->source,
-             quantity_reads(b->figures, row->sees->is));
+                 quantity_reads(b->figures, row->sees->is));
     return diagram_and(t->wiring.builder, works, wiring_sees(&t->wiring, key));
 }
 
@@ -280,7 +280,7 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
     struct tree t = {.arena = f->arena, .building = &b, .hazard = o->data};
     const struct quantity *q = t.hazard->frequency;
     x->frequency = compiled_add(&b, PROPERTY_FREQUENCY, NULL, NULL, compile_quantity(&b, q),
-                            t.hazard->source, quantity_reads(f, q));
+                                t.hazard->source, quantity_reads(f, q));
     wiring_init(&t.wiring, f, v->model);
     order_rows(&t);
     grow_rows(&t);

@@ -64,7 +64,7 @@ static struct items plain_items(struct tree *t, size_t k)
         const struct quantity *q = item_quantity(item);
         node_id n = compile_quantity(b, q);
         compiled_add(b, PROPERTY_DAMAGE, t->hazard->outcomes.keys[k], o->damage.keys[i], n,
-                 item->source, quantity_reads(b->figures, q));
+                     item->source, quantity_reads(b->figures, q));
         items.nodes[items.n++] = n;
     }
     return items;
@@ -85,21 +85,22 @@ static figure_id damage_at_end(struct tree *t, size_t k, const struct items *pla
         n++;
     }
     b->clearance = end->spot.in->expr;
-    if (compiled_figure(b->figures, b->unit, PROPERTY_CLEARANCE, end->spot.row, NULL) == FIGURE_NONE)
+    if (compiled_figure(b->figures, b->unit, PROPERTY_CLEARANCE, end->spot.row, NULL) ==
+        FIGURE_NONE)
         compiled_add(b, PROPERTY_CLEARANCE, end->spot.row, NULL, compile_expr(b, b->clearance),
-                 t->hazard->source, quantity_reads(b->figures, end->spot.in));
+                     t->hazard->source, quantity_reads(b->figures, end->spot.in));
     for (size_t i = 0; i < o->damage.n; i++) {
         const struct damage_item *item = ROW(struct damage_item, o->damage, i);
         if (!counts(b->figures, item) || !is_timed(item))
             continue;
         nodes[n] = compile_quantity(b, item_quantity(item));
         compiled_add(b, PROPERTY_DAMAGE, key,
-                 arena_printf(t->arena, "%s.at.%s", o->damage.keys[i], path), nodes[n],
-                 item->source, quantity_reads(b->figures, item_quantity(item)));
+                     arena_printf(t->arena, "%s.at.%s", o->damage.keys[i], path), nodes[n],
+                     item->source, quantity_reads(b->figures, item_quantity(item)));
         n++;
     }
     return compiled_add(b, PROPERTY_DAMAGE, key, arena_printf(t->arena, "at.%s", path),
-                    sum_of(t, n, nodes, dim_money), NULL, NULL);
+                        sum_of(t, n, nodes, dim_money), NULL, NULL);
 }
 
 /* Probability of an outcome: the sum over its ends. */
@@ -114,8 +115,9 @@ static node_id probability_of(struct tree *t, size_t k)
     return sum_of(t, n, nodes, dim_number);
 }
 
-/* Mean over the ends of an outcome whose damage depends on the clearance time. */
-static node_id mean_damage(struct tree *t, size_t k, const struct items *plain, node_id p)
+/* Probability times damage over the ends of an outcome whose damage depends on the
+ * clearance time: what one hazard costs through this outcome. */
+static node_id expected_damage(struct tree *t, size_t k, const struct items *plain)
 {
     struct figures *f = t->building->figures;
     node_id *nodes = NEW_ARRAY(t->arena, t->ends.n, node_id);
@@ -129,28 +131,45 @@ static node_id mean_damage(struct tree *t, size_t k, const struct items *plain, 
             graph_op2(f->graph, OP_MULTIPLY, figure_at(f, t->exports->ends[i].probability)->node,
                       figure_at(f, damage)->node);
     }
-    return graph_op2(f->graph, OP_RATIO, sum_of(t, n, nodes, dim_money), p);
+    return sum_of(t, n, nodes, dim_money);
+}
+
+/* Risk is a product and damage its quotient by the frequency where ends differ, so that the
+ * risk is linear in every probability; the other way round where one damage holds. */
+static void add_damage_and_risk(struct tree *t, size_t k, const struct items *plain)
+{
+    struct building *b = t->building;
+    struct hazard_exports *x = t->exports;
+    struct graph *g = b->figures->graph;
+    const char *key = t->hazard->outcomes.keys[k];
+    node_id f = figure_at(b->figures, x->frequency_of[k])->node, damage, risk;
+    if (plain->timed) {
+        node_id hazard = figure_at(b->figures, x->frequency)->node;
+        risk = graph_op2(g, OP_MULTIPLY, hazard, expected_damage(t, k, plain));
+        damage = graph_op2(g, OP_RATIO, risk, f);
+    } else {
+        damage = sum_of(t, plain->n, plain->nodes, dim_money);
+        risk = graph_op2(g, OP_MULTIPLY, f, damage);
+    }
+    x->damage_of[k] = compiled_add(b, PROPERTY_DAMAGE, key, NULL, damage, NULL, NULL);
+    x->risk_of[k] = compiled_add(b, PROPERTY_RISK, key, NULL, risk, NULL, NULL);
+    for (size_t i = 0; i < x->n_ends && !plain->timed; i++)
+        if (x->ends[i].outcome_index == k)
+            x->ends[i].damage = x->damage_of[k];
 }
 
 static void compile_outcome(struct tree *t, size_t k)
 {
     struct building *b = t->building;
     struct hazard_exports *x = t->exports;
-    struct graph *g = b->figures->graph;
     const char *key = t->hazard->outcomes.keys[k];
     struct items plain = plain_items(t, k);
     node_id p = probability_of(t, k);
-    node_id f = graph_op2(g, OP_MULTIPLY, figure_at(b->figures, x->frequency)->node, p);
+    node_id f =
+        graph_op2(b->figures->graph, OP_MULTIPLY, figure_at(b->figures, x->frequency)->node, p);
     x->probability[k] = compiled_add(b, PROPERTY_PROBABILITY, key, NULL, p, NULL, NULL);
     x->frequency_of[k] = compiled_add(b, PROPERTY_FREQUENCY, key, NULL, f, NULL, NULL);
-    node_id d =
-        plain.timed ? mean_damage(t, k, &plain, p) : sum_of(t, plain.n, plain.nodes, dim_money);
-    x->damage_of[k] = compiled_add(b, PROPERTY_DAMAGE, key, NULL, d, NULL, NULL);
-    for (size_t i = 0; i < x->n_ends && !plain.timed; i++)
-        if (x->ends[i].outcome_index == k)
-            x->ends[i].damage = x->damage_of[k];
-    x->risk_of[k] =
-        compiled_add(b, PROPERTY_RISK, key, NULL, graph_op2(g, OP_MULTIPLY, f, d), NULL, NULL);
+    add_damage_and_risk(t, k, &plain);
 }
 
 static bool has_damage(const struct tree *t, size_t k)
@@ -181,7 +200,7 @@ static void compile_sums(struct tree *t)
     x->damaging = compiled_add(b, PROPERTY_DAMAGING, NULL, NULL, damaging, NULL, NULL);
     x->risk = compiled_add(b, PROPERTY_RISK, NULL, NULL, risk, NULL, NULL);
     x->damage = compiled_add(b, PROPERTY_DAMAGE, NULL, NULL, graph_op2(g, OP_RATIO, risk, damaging),
-                         NULL, NULL);
+                             NULL, NULL);
 }
 
 void compile_outcomes(struct tree *t)

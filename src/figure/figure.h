@@ -93,8 +93,8 @@ struct figures {
     ARRAY(struct figure) list;
     ARRAY(struct compiled *) units;
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
-    struct strmap variants;    /* "A+B" -> struct variant */
-    struct strmap used_by;     /* id -> struct objects: what refers to it, in the base */
+    struct strmap variants;        /* "A+B" -> struct variant */
+    struct strmap used_by;         /* id -> struct objects: what refers to it, in the base */
     ARRAY(const struct quantity *) inputs;
     ARRAY(figure_id) of_node;     /* first figure of a node */
     ARRAY(const char *) literals; /* text of a CONST node, or NULL */
@@ -130,7 +130,7 @@ const char *figure_name(const struct figures *f, struct arena *a, figure_id id);
 
 /* The figure of a unit by its property and qualifiers (NULL: none); FIGURE_NONE. */
 figure_id compiled_figure(const struct figures *f, const struct compiled *u, enum property p,
-                      const char *q1, const char *q2);
+                          const char *q1, const char *q2);
 
 /* --- hazards --- */
 
@@ -186,8 +186,8 @@ void figure_inputs(struct figures *f, struct arena *a, figure_id id, struct figu
 ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e);
 
 /* A figure of a unit by the part of its name behind the object: "risk.slow". */
-ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest, figure_id *out,
-                       ohmen_error *e);
+ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest,
+                           figure_id *out, ohmen_error *e);
 
 /* The register's own settings as a unit: register.discount. */
 const struct compiled *figures_settings(struct figures *f);

@@ -64,7 +64,7 @@ static const char *compiled_key(struct figures *f, const char *id, const struct 
 }
 
 void compiled_begin(struct figures *f, const struct variant *projected, const struct object *o,
-                const char *id, struct building *b)
+                    const char *id, struct building *b)
 {
     struct compiled *u = NEW(f->arena, struct compiled);
     *u = (struct compiled){.object = o, .id = id, .variant = projected, .main = FIGURE_NONE};
@@ -89,7 +89,7 @@ static void name_node(struct figures *f, node_id node, figure_id id)
 }
 
 figure_id compiled_add(struct building *b, enum property p, const char *q1, const char *q2,
-                   node_id node, const char *source, const char *text)
+                       node_id node, const char *source, const char *text)
 {
     struct figures *f = b->figures;
     figure_id id = (figure_id)f->list.n;
@@ -125,7 +125,7 @@ static bool same(const char *a, const char *b)
 }
 
 figure_id compiled_figure(const struct figures *f, const struct compiled *u, enum property p,
-                      const char *q1, const char *q2)
+                          const char *q1, const char *q2)
 {
     for (figure_id i = u->first; i < u->first + u->n; i++) {
         const struct figure *g = &f->list.at[i];

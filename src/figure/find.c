@@ -44,8 +44,8 @@ static const char *without_variant(struct arena *a, const char *name)
     return at ? arena_strn(a, name, (size_t)(at - name)) : name;
 }
 
-ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest, figure_id *out,
-                       ohmen_error *e)
+ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest,
+                           figure_id *out, ohmen_error *e)
 {
     const char *wanted = arena_printf(f->arena, "%s.%s", u->id, rest);
     struct nearest near;
@@ -96,7 +96,7 @@ const struct compiled *figures_settings(struct figures *f)
     struct building b;
     compiled_begin(f, base, model_find(f->base, REGISTER_ID), REGISTER_ID, &b);
     compiled_add(&b, PROPERTY_DISCOUNT, NULL, NULL, compile_quantity(&b, s->discount), NULL,
-             quantity_reads(f, s->discount));
+                 quantity_reads(f, s->discount));
     compiled_end(&b);
     return b.unit;
 }
@@ -117,16 +117,46 @@ static enum walk look_at_field(void *ctx, const struct visit *v)
     return WALK_PAST;
 }
 
+/* The keys of one object that are given but not used; "" when there are none. */
+static const char *unused_keys(struct arena *a, const struct object *o)
+{
+    struct looking l = {.arena = a};
+    struct walker w = {.ctx = &l, .enter = look_at_field};
+    text_init(&l.keys, a);
+    walk_table(a, kinds[o->kind].table, o->node, o->data, &w);
+    return text_str(&l.keys);
+}
+
+static void add_unused(struct arena *a, const char *lead, const struct object *o,
+                       struct unused *out)
+{
+    const char *keys = unused_keys(a, o);
+    if (*keys)
+        *array_push(a, out) = arena_printf(a, "%s%s: %s", lead, o->id, keys);
+}
+
+/* What an option brings into the register and this version does not use. */
+static void unused_in_option(struct arena *a, const struct model *m, const char *option,
+                             struct unused *out)
+{
+    struct diags quiet;
+    diags_init(&quiet, a);
+    const struct model *v = model_variant(a, m, 1, &option, &quiet);
+    const char *lead = arena_printf(a, "%s, in its change of ", option);
+    for (size_t i = 0; v && i < v->by_id.n; i++) {
+        const struct object *o = v->by_id.at[i].value;
+        const struct object *before = o ? model_find(m, o->id) : NULL;
+        if (o && (!before || !text_equal(unused_keys(a, before), unused_keys(a, o))))
+            add_unused(a, lead, o, out);
+    }
+}
+
 void figures_unused(struct arena *a, const struct model *m, struct unused *out)
 {
     for (int k = 0; k < KIND_COUNT; k++)
         for (size_t i = 0; i < m->of[k].n; i++) {
-            const struct object *o = m->of[k].at[i];
-            struct looking l = {.arena = a};
-            struct walker w = {.ctx = &l, .enter = look_at_field};
-            text_init(&l.keys, a);
-            walk_table(a, kinds[k].table, o->node, o->data, &w);
-            if (l.keys.n)
-                *array_push(a, out) = arena_printf(a, "%s: %s", o->id, text_str(&l.keys));
+            add_unused(a, "", m->of[k].at[i], out);
+            if (k == KIND_OPTION)
+                unused_in_option(a, m, m->of[k].at[i]->id, out);
         }
 }

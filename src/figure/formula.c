@@ -72,18 +72,17 @@ static void write_input(struct writing *w, node_id n)
 
 /* --- ends of event trees and failures of schemes --- */
 
-static void write_condition(struct text *t, struct figures *f, const struct compiled *u,
-                            const struct condition *c)
+static void write_condition(struct text *t, const struct compiled *u, const struct condition *c)
 {
     if (!c)
         return;
-    write_condition(t, f, u, c->before);
+    write_condition(t, u, c->before);
     if (c->before)
         text_add(t, " and ");
     text_add(t, c->works ? "" : "not ");
     if (c->sees_row)
         text_printf(t, "(sees.%s and ", c->sees_row);
-    wiring_text(t, f, u->variant->model, c->id);
+    wiring_text(t, u->variant->model, c->id, !c->before && c->works && !c->sees_row);
     if (c->sees_row)
         text_byte(t, ')');
 }
@@ -100,7 +99,7 @@ static void write_pick(struct writing *w, node_id n)
     text_add(w->out, "probability(");
     if (u->object->kind == KIND_SCHEME) {
         text_add(w->out, "not ");
-        wiring_text(w->out, w->f, u->variant->model, u->id);
+        wiring_text(w->out, u->variant->model, u->id, false);
     } else {
         const struct hazard_exports *x = u->exports;
         size_t i = 0;
@@ -108,7 +107,7 @@ static void write_pick(struct writing *w, node_id n)
             i++;
         if (!x->ends[i].condition)
             text_add(w->out, "certain");
-        write_condition(w->out, w->f, u, x->ends[i].condition);
+        write_condition(w->out, u, x->ends[i].condition);
     }
     text_byte(w->out, ')');
     node_id diagram = graph_args(w->f->graph, n)[0];

@@ -98,44 +98,44 @@ node_id wiring_argument(struct building *b, const struct wiring *w, size_t varia
 
 /* --- text --- */
 
-static void structure_text(struct text *t, struct figures *f, const struct model *m,
-                           const struct structure *s);
+static void structure_text(struct text *t, const struct model *m, const struct structure *s,
+                           bool bare);
 
-static void join_parts(struct text *t, struct figures *f, const struct model *m,
-                       const struct structure *s, const char *between)
+static void join_parts(struct text *t, const struct model *m, const struct structure *s,
+                       const char *between)
 {
     for (size_t i = 0; i < s->n; i++) {
         text_add(t, i ? between : "");
-        structure_text(t, f, m, s->of[i]);
+        structure_text(t, m, s->of[i], false);
     }
 }
 
-/* Every composite stands in parentheses; one part is itself. */
-static void structure_text(struct text *t, struct figures *f, const struct model *m,
-                           const struct structure *s)
+/* A composite stands in parentheses, unless it is bare; one part is itself. */
+static void structure_text(struct text *t, const struct model *m, const struct structure *s,
+                           bool bare)
 {
     if (s->op == STRUCTURE_NAME) {
-        wiring_text(t, f, m, s->name);
+        wiring_text(t, m, s->name, bare);
     } else if (s->op == STRUCTURE_ABSENT) {
         text_add(t, "absent");
     } else if (s->n == 1) {
-        structure_text(t, f, m, s->of[0]);
+        structure_text(t, m, s->of[0], bare);
     } else if (s->k == s->n || s->k == 1) {
-        text_byte(t, '(');
-        join_parts(t, f, m, s, s->k == 1 ? " or " : " and ");
-        text_byte(t, ')');
+        text_add(t, bare ? "" : "(");
+        join_parts(t, m, s, s->k == 1 ? " or " : " and ");
+        text_add(t, bare ? "" : ")");
     } else {
         text_printf(t, "at-least(%u; ", s->k);
-        join_parts(t, f, m, s, "; ");
+        join_parts(t, m, s, "; ");
         text_byte(t, ')');
     }
 }
 
-void wiring_text(struct text *t, struct figures *f, const struct model *m, const char *id)
+void wiring_text(struct text *t, const struct model *m, const char *id, bool bare)
 {
     const struct object *o = model_find(m, id);
     if (o->kind == KIND_ELEMENT)
         text_add(t, id);
     else
-        structure_text(t, f, m, ((const struct scheme *)o->data)->works);
+        structure_text(t, m, ((const struct scheme *)o->data)->works, bare);
 }

@@ -31,7 +31,7 @@ static const char *range_words(const struct field *f)
         return "a probability lies between 0 and 1 (0 % and 100 %)";
     if (f->dim == INTEREST)
         return "interest lies above -100 % per a";
-    return f->flags & POSITIVE ? "it must be greater than 0" : "it must not be negative";
+    return f->flags & POSITIVE ? "it must be greater than 0" : "it must be 0 or more";
 }
 
 static bool in_range(const struct field *f, double low, double high)

@@ -54,7 +54,29 @@ struct hazard_check {
     struct checking *c;
     const struct object *object;
     const struct hazard *hazard;
+    const struct response_row *row; /* the one that is being looked at */
 };
+
+static bool uses_clearance(const struct outcome *o)
+{
+    for (size_t i = 0; i < o->damage.n; i++) {
+        const struct damage_item *item = ROW(struct damage_item, o->damage, i);
+        const struct quantity *q = item->is ? item->is : item->varies;
+        if (q && q->shape == SHAPE_EXPRESSION && expr_uses(q->expr, EXPR_CLEARANCE))
+            return true;
+    }
+    return false;
+}
+
+/* Damage that depends on the clearance time needs one in every row that leads to it. */
+static void check_clearance(struct hazard_check *h, const struct outcome *o, const char *name,
+                            const struct node *node)
+{
+    if (!h->row->in && uses_clearance(o))
+        diag_add(h->c->diags, node->place,
+                 "the damage of \"%s\" depends on clearance-time, but this row has no \"in\"",
+                 name);
+}
 
 static void check_outcome_name(struct hazard_check *h, const char *name, const struct node *node)
 {
@@ -63,8 +85,10 @@ static void check_outcome_name(struct hazard_check *h, const char *name, const s
     struct nearest near;
     nearest_init(&near, name);
     for (size_t i = 0; i < h->hazard->outcomes.n; i++) {
-        if (text_equal(h->hazard->outcomes.keys[i], name))
+        if (text_equal(h->hazard->outcomes.keys[i], name)) {
+            check_clearance(h, ROW(struct outcome, h->hazard->outcomes, i), name, node);
             return;
+        }
         nearest_offer(&near, h->hazard->outcomes.keys[i]);
     }
     const char *best = nearest_take(&near);
@@ -129,6 +153,7 @@ static double clearance(const struct response_row *row)
 static void check_row(struct hazard_check *h, const struct response_row *row,
                       const struct node *node)
 {
+    h->row = row;
     check_branch(h, &row->then, node);
     if (row->cleared_by && !row->in)
         diag_add(h->c->diags, node->place,
@@ -247,7 +272,7 @@ static void check_categories(struct hazard_check *h)
 
 void check_hazard(struct checking *c, const struct object *o)
 {
-    struct hazard_check h = {c, o, o->data};
+    struct hazard_check h = {c, o, o->data, NULL};
     const struct node *rows_node = node_get(o->node, "response");
     for (size_t i = 0; i < h.hazard->response.n; i++)
         check_row(&h, ROW(struct response_row, h.hazard->response, i), rows_node->pairs[i].value);

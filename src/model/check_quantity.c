@@ -164,8 +164,9 @@ static void check_field(struct quantities_walk *w, const struct visit *v)
     }
     const struct dim *want = expected_dim(v->field->dim);
     if (want && !dim_equal(*want, q->dim))
-        diag_add(w->c->diags, at, "expected %s, found %s",
-                 dim_words(w->c->arena, &w->c->model->units, *want),
+        diag_add(w->c->diags, at, "expected %s%s%s%s, found %s",
+                 dim_words(w->c->arena, &w->c->model->units, *want), v->key ? " for \"" : "",
+                 v->key ? v->key : "", v->key ? "\"" : "",
                  dim_words(w->c->arena, &w->c->model->units, q->dim));
     if ((v->field->flags & CERTAIN) && !check_is_certain(w->c, q))
         diag_add(w->c->diags, at, "a certain number is needed here, but a name in it is uncertain");

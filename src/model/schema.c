@@ -363,7 +363,10 @@ static struct node *shape_schema(const struct schema *s, const struct quantity_s
     if (shape->also)
         put(s, properties, shape->also, ref(s, "", "certain-quantity"));
     put(s, properties, "times", ref(s, "", "certain-quantity"));
-    struct node *def = one_key(s, "description", text(s, shape->help));
+    const char *help = discrete ? "One of a few values, each with its probability p; one p may be "
+                                  "rest"
+                                : shape->help;
+    struct node *def = one_key(s, "description", text(s, help));
     put(s, def, "type", text(s, "object"));
     put(s, def, "properties", properties);
     put(s, def, "required", required);

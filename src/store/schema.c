@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The enduring tables: made from the compiled-in text, and compared with what a file
- * holds by making them once more in memory. Tables beside them are derived and may
- * differ between versions; triggers and views beside them are none of ohmen's and a
- * sign of damage. Owns nothing. */
+/* The enduring tables: made from the compiled-in text, and compared with it word by
+ * word. SQLite keeps each CREATE statement as it was written, up to its semicolon.
+ * Tables beside them are derived and may differ between versions; triggers and views
+ * beside them are none of ohmen's and a sign of damage. Owns nothing. */
 #include <stdio.h>
+#include <string.h>
 
 #include "base/text.h"
 #include "store/internal.h"
@@ -42,86 +43,108 @@ static ohmen_status check_head(struct store *s, ohmen_error *e)
     return OHMEN_OK;
 }
 
-static ohmen_status differs(const struct store *s, const char *type, const char *name,
-                            ohmen_error *e)
+/* --- the compiled-in text, statement by statement --- */
+
+struct statement {
+    const char *type, *name, *sql;
+};
+struct statements ARRAY_BODY(struct statement);
+
+/* The word behind `at`: letters and underscores. */
+static const char *word_at(struct arena *a, const char *at)
 {
-    return error_set(e, OHMEN_REGISTER,
-                     "%s is damaged: its %s %s is not as this format has it", s->base.name, type,
-                     name);
+    return arena_strn(a, at, strspn(at, "abcdefghijklmnopqrstuvwxyz_"));
 }
 
-#define SCHEMA_OBJECT_SQL                                                                          \
-    "SELECT tbl_name, sql FROM sqlite_schema WHERE type = ?1 AND name = ?2"
-
-static bool same_text(const char *a, const char *b)
+/* "CREATE TABLE name(...": statements begin at the start of a line and end with a
+ * semicolon at the end of one. */
+static void add_statement(struct arena *a, const char *sql, size_t n, struct statements *out)
 {
-    return a && b ? text_equal(a, b) : a == b;
+    static const struct {
+        const char *begin, *type;
+    } forms[] = {{"CREATE TABLE ", "table"},
+                 {"CREATE INDEX ", "index"},
+                 {"CREATE TRIGGER ", "trigger"}};
+    for (size_t i = 0; i < sizeof forms / sizeof forms[0]; i++)
+        if (text_starts(sql, forms[i].begin))
+            *array_push(a, out) = (struct statement){forms[i].type,
+                                                     word_at(a, sql + strlen(forms[i].begin)),
+                                                     arena_strn(a, sql, n)};
 }
+
+static struct statements enduring(struct arena *a)
+{
+    struct statements found = {0};
+    const char *at = layout_sql;
+    while ((at = strstr(at, "\nCREATE ")) != NULL) {
+        const char *end = strstr(++at, ";\n");
+        if (!end)
+            break;
+        add_statement(a, at, (size_t)(end - at), &found);
+        at = end;
+    }
+    return found;
+}
+
+/* --- comparing --- */
 
 /* Is each enduring object in the file, word by word? */
-static ohmen_status check_enduring(struct store *s, const struct base *model, ohmen_error *e)
+static ohmen_status check_enduring(struct store *s, const struct statements *all, ohmen_error *e)
 {
-    struct query wanted = query_new(model, "SELECT type, name, tbl_name, sql FROM sqlite_schema", e);
-    struct query found = query_new(&s->base, SCHEMA_OBJECT_SQL, e);
-    while (query_row(&wanted) && found.status == OHMEN_OK) {
-        const char *type = query_text(&wanted, 0), *name = query_text(&wanted, 1);
-        query_bind_text(&found, 1, type);
-        query_bind_text(&found, 2, name);
-        bool same = query_row(&found) && same_text(query_text(&wanted, 2), query_text(&found, 0)) &&
-                    same_text(query_text(&wanted, 3), query_text(&found, 1));
-        query_reset(&found);
-        if (!same && found.status == OHMEN_OK)
-            wanted.status = differs(s, type, name, e);
+    struct query q = query_new(
+        &s->base, "SELECT 1 FROM sqlite_schema WHERE type = ?1 AND name = ?2 AND sql = ?3", e);
+    for (size_t i = 0; i < all->n; i++) {
+        query_bind_text(&q, 1, all->at[i].type);
+        query_bind_text(&q, 2, all->at[i].name);
+        query_bind_text(&q, 3, all->at[i].sql);
+        if (!query_row(&q))
+            query_fail(&q, OHMEN_REGISTER, "%s is damaged: its %s %s is not as this format has it",
+                       s->base.name, all->at[i].type, all->at[i].name);
+        query_reset(&q);
     }
-    ohmen_status status = query_end(&found);
-    ohmen_status other = query_end(&wanted);
-    return status != OHMEN_OK ? status : other;
+    return query_end(&q);
 }
 
-/* Does anything act on enduring tables that is none of theirs? */
-static ohmen_status check_foreign(struct store *s, const struct base *model, ohmen_error *e)
+static bool is_enduring(const struct statements *all, const char *type, const char *name)
 {
-    struct query found =
-        query_new(&s->base,
-                  "SELECT type, name, tbl_name, '' FROM sqlite_schema "
-                  "WHERE type NOT IN ('table', 'index') OR sql LIKE 'CREATE VIRTUAL%'",
-                  e);
-    struct query wanted = query_new(model, SCHEMA_OBJECT_SQL, e);
-    while (query_row(&found) && wanted.status == OHMEN_OK) {
-        const char *type = query_text(&found, 0), *name = query_text(&found, 1);
-        query_bind_text(&wanted, 1, type);
-        query_bind_text(&wanted, 2, name);
-        bool known = query_row(&wanted);
-        query_reset(&wanted);
-        if (!known && wanted.status == OHMEN_OK)
-            found.status = error_set(e, OHMEN_REGISTER,
-                                     "%s is damaged: it holds a %s %s that ohmen does not make",
-                                     s->base.name, type ? type : "thing", name ? name : "?");
-    }
-    ohmen_status status = query_end(&wanted);
-    ohmen_status other = query_end(&found);
-    return status != OHMEN_OK ? status : other;
+    for (size_t i = 0; i < all->n; i++)
+        if (text_equal(all->at[i].type, type) && text_equal(all->at[i].name, name))
+            return true;
+    return false;
 }
 
-/* meta is known word by word. */
-static ohmen_status check_meta(struct store *s, const struct base *model, ohmen_error *e)
+/* Does anything act on tables that is none of ohmen's? */
+static ohmen_status check_foreign(struct store *s, const struct statements *all, ohmen_error *e)
 {
-    static const char sql[] = "SELECT key, value FROM meta ORDER BY key";
-    struct query wanted = query_new(model, sql, e), found = query_new(&s->base, sql, e);
-    for (;;) {
-        bool more = query_row(&wanted), there = query_row(&found);
-        if (wanted.status != OHMEN_OK || found.status != OHMEN_OK || (!more && !there))
-            break;
-        if (more != there || !same_text(query_text(&wanted, 0), query_text(&found, 0)) ||
-            !same_text(query_text(&wanted, 1), query_text(&found, 1))) {
-            query_fail(&found, OHMEN_REGISTER, "%s is damaged: its table meta is not as it was made",
-                       s->base.name);
-            break;
-        }
+    struct query q = query_new(&s->base,
+                               "SELECT type, name FROM sqlite_schema WHERE type NOT IN ('table', "
+                               "'index') OR sql LIKE 'CREATE VIRTUAL%'",
+                               e);
+    while (query_row(&q)) {
+        const char *type = query_name(&q, 0), *name = query_name(&q, 1);
+        if (!is_enduring(all, type, name))
+            query_fail(&q, OHMEN_REGISTER, "%s is damaged: it holds a %s %s that ohmen does not make",
+                       s->base.name, type, name);
     }
-    ohmen_status status = query_end(&found);
-    ohmen_status other = query_end(&wanted);
-    return status != OHMEN_OK ? status : other;
+    return query_end(&q);
+}
+
+/* meta as schema/register.sql fills it. */
+static const char *const meta[][2] = {
+    {"application", "ohmen"}, {"format", "1"}, {"hash", "BLAKE2b-256"}};
+
+static ohmen_status check_meta(struct store *s, ohmen_error *e)
+{
+    size_t rows = 0, n = sizeof meta / sizeof meta[0];
+    struct query q = query_new(&s->base, "SELECT key, value FROM meta ORDER BY key", e);
+    bool same = true;
+    for (; query_row(&q); rows++)
+        same = same && rows < n && text_equal(query_name(&q, 0), meta[rows][0]) &&
+               text_equal(query_name(&q, 1), meta[rows][1]);
+    if (!same || rows != n)
+        query_fail(&q, OHMEN_REGISTER, "%s is damaged: its table meta is not as it was made",
+                   s->base.name);
+    return query_end(&q);
 }
 
 ohmen_status schema_check(struct store *s, ohmen_error *e)
@@ -130,16 +153,12 @@ ohmen_status schema_check(struct store *s, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     struct arena *a = arena_child(s->arena);
-    struct base model;
-    status = store_memory_base(a, &model, e);
+    struct statements all = enduring(a);
+    status = check_enduring(s, &all, e);
     if (status == OHMEN_OK)
-        status = query_exec(&model, layout_sql, e);
+        status = check_foreign(s, &all, e);
     if (status == OHMEN_OK)
-        status = check_enduring(s, &model, e);
-    if (status == OHMEN_OK)
-        status = check_foreign(s, &model, e);
-    if (status == OHMEN_OK)
-        status = check_meta(s, &model, e);
+        status = check_meta(s, e);
     arena_free(a);
     return status;
 }

@@ -22,11 +22,12 @@ ohmen_status ohmen_create(const char *path, ohmen_error *e)
 }
 
 /* Opens and closes the file: what is wrong with it is told now. */
-static ohmen_status try_open(const char *path, ohmen_mode mode, ohmen_error *e)
+static ohmen_status try_open(const struct mem *mem, const char *path, ohmen_mode mode,
+                             ohmen_error *e)
 {
     jmp_buf guard;
     struct store *s;
-    struct arena *a = arena_new(NULL);
+    struct arena *a = arena_new(mem);
     if (!a)
         return error_set(e, OHMEN_MEMORY, "out of memory");
     if (setjmp(guard)) {
@@ -40,10 +41,10 @@ static ohmen_status try_open(const char *path, ohmen_mode mode, ohmen_error *e)
     return status;
 }
 
-static ohmen_register *make_register(const char *path, ohmen_mode mode)
+static ohmen_register *make_register(const struct mem *mem, const char *path, ohmen_mode mode)
 {
     jmp_buf guard;
-    struct arena *a = arena_new(NULL);
+    struct arena *a = arena_new(mem);
     if (!a)
         return NULL;
     if (setjmp(guard)) {
@@ -52,21 +53,27 @@ static ohmen_register *make_register(const char *path, ohmen_mode mode)
     }
     arena_guard(a, &guard);
     ohmen_register *r = NEW(a, ohmen_register);
-    *r = (ohmen_register){.arena = a, .path = arena_str(a, path), .mode = mode};
+    *r = (ohmen_register){.arena = a, .mem = mem, .path = arena_str(a, path), .mode = mode};
     arena_guard(a, NULL);
     return r;
 }
 
-ohmen_status ohmen_open(const char *path, ohmen_mode mode, ohmen_register **out, ohmen_error *e)
+ohmen_status register_open(const struct mem *mem, const char *path, ohmen_mode mode,
+                           ohmen_register **out, ohmen_error *e)
 {
-    ohmen_status status = try_open(path, mode, e);
+    ohmen_status status = try_open(mem, path, mode, e);
     if (status != OHMEN_OK)
         return status;
-    ohmen_register *r = make_register(path, mode);
+    ohmen_register *r = make_register(mem, path, mode);
     if (!r)
         return error_set(e, OHMEN_MEMORY, "out of memory");
     *out = r;
     return OHMEN_OK;
+}
+
+ohmen_status ohmen_open(const char *path, ohmen_mode mode, ohmen_register **out, ohmen_error *e)
+{
+    return register_open(NULL, path, mode, out, e);
 }
 
 void ohmen_close(ohmen_register *r)
@@ -107,7 +114,7 @@ ohmen_status job_do(ohmen_register *r, enum store_mode mode, const ohmen_query *
 {
     jmp_buf guard;
     ohmen_report *made = NULL;
-    struct arena *a = arena_new(NULL);
+    struct arena *a = arena_new(r->mem);
     if (!a)
         return error_set(e, OHMEN_MEMORY, "out of memory");
     if (setjmp(guard)) {

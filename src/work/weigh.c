@@ -185,7 +185,7 @@ static void left_out_note(struct job *j, const struct weighing *w)
                     w->left_out.at[i].why);
     if (t.n)
         report_note(j->report, "left-out",
-                    "Not possible, and so not weighed, alone or in any larger combination: %s.",
+                    "Not possible, and so not weighed: %s.",
                     text_str(&t));
     if (w->only_pairs)
         report_note(

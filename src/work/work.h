@@ -14,6 +14,7 @@
 
 struct ohmen_register {
     struct arena *arena;
+    const struct mem *mem; /* that all its jobs draw from; NULL: mem_system */
     const char *path;
     ohmen_mode mode;
 };
@@ -40,6 +41,10 @@ struct job {
     struct report *report; /* &out->report */
     bool keep_report;      /* the report goes out although the job fails */
 };
+
+/* ohmen_open with a seam for memory, borrowed for the life of the register. */
+ohmen_status register_open(const struct mem *mem, const char *path, ohmen_mode mode,
+                           ohmen_register **out, ohmen_error *e);
 
 /* Runs `run` as a job and hands out its report. query may be NULL. */
 typedef ohmen_status job_run(struct job *j, void *ctx, ohmen_error *e);
