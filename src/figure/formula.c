@@ -87,6 +87,38 @@ static void write_condition(struct text *t, const struct compiled *u, const stru
         text_byte(t, ')');
 }
 
+static bool is_of_name(char c)
+{
+    return (c >= 'a' && c <= 'z') || (c >= 'A' && c <= 'Z') || (c >= '0' && c <= '9') || c == '-';
+}
+
+static bool mentions(const char *text, const char *name)
+{
+    size_t n = strlen(name);
+    for (const char *p = strstr(text, name); p; p = strstr(p + 1, name))
+        if (!is_of_name(p[-1]) && !is_of_name(p[n]))
+            return true;
+    return false;
+}
+
+/* The probabilities behind the events that a condition names: those of the elements
+ * themselves, even where they only repeat their type's. */
+static void meet_variables(struct writing *w, const struct compiled *u, const char *text)
+{
+    const struct building under = {.figures = w->f, .variant = u->variant};
+    const struct hazard_exports *x = u->exports;
+    const struct scheme_exports *y = u->exports;
+    bool hazard = u->object->kind == KIND_HAZARD;
+    for (size_t i = 0; i < (hazard ? x->n_variables : y->n_variables); i++) {
+        const char *name = hazard ? x->variables[i] : y->variables[i];
+        if (!mentions(text, name))
+            continue;
+        bool sees = hazard && x->is_sees[i];
+        meet(w, sees ? compiled_figure(w->f, u, PROPERTY_SHARE, name, "sees")
+                     : compiled_of(&under, name)->main);
+    }
+}
+
 /* "probability(...)" of the condition under which an end is reached. */
 static void write_pick(struct writing *w, node_id n)
 {
@@ -96,6 +128,7 @@ static void write_pick(struct writing *w, node_id n)
     graph_section(w->f->graph, graph_section_of(w->f->graph, n), &first, &count, &tag);
     const struct compiled *u = w->f->units.at[tag];
     uint32_t root = graph_at(w->f->graph, n)->extra;
+    size_t from = w->out->n;
     text_add(w->out, "probability(");
     if (u->object->kind == KIND_SCHEME) {
         text_add(w->out, "not ");
@@ -110,11 +143,7 @@ static void write_pick(struct writing *w, node_id n)
         write_condition(w->out, u, x->ends[i].condition);
     }
     text_byte(w->out, ')');
-    node_id diagram = graph_args(w->f->graph, n)[0];
-    const node_id *args = graph_args(w->f->graph, diagram);
-    for (uint32_t i = 0; i < graph_at(w->f->graph, diagram)->n; i++)
-        if (named(w, args[i]) != FIGURE_NONE)
-            meet(w, named(w, args[i]));
+    meet_variables(w, u, text_str(w->out) + from);
 }
 
 /* --- operations --- */
