@@ -373,7 +373,7 @@ CREATE TABLE "damage"( -- What one outcome costs, by category
     "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
     "key" TEXT NOT NULL, -- Name of the row
     "name" TEXT, -- What is damaged
-    "category" TEXT, -- Category of damage: equipment, crew, lost-load, ...
+    "category" TEXT, -- Category of damage, such as equipment, crew or lost-load
     "is" TEXT, -- What it costs
     "varies" TEXT, -- What it costs, drawn anew at each occurrence
     "source" TEXT, -- Where the number comes from

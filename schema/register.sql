@@ -48,7 +48,7 @@ CREATE INDEX version_of_body ON version(body);
 CREATE TABLE observation(
     number INTEGER PRIMARY KEY,                 -- order of arrival: 1, 2, 3, ...
     seq INTEGER NOT NULL REFERENCES entry(seq), -- the entry that brought it
-    ident TEXT NOT NULL UNIQUE,                 -- its key at the source, or hash of its content and an ordinal
+    ident TEXT NOT NULL UNIQUE,                 -- its key at the source, or one made of it
     day TEXT NOT NULL,                          -- when it happened, YYYY-MM-DD
     what TEXT NOT NULL,                         -- kind of observation: fault, test, trip, ...
     subject TEXT NOT NULL,                      -- id of the object that it is about
@@ -60,9 +60,9 @@ CREATE TABLE observation(
 CREATE INDEX observation_of_seq ON observation(seq);
 
 CREATE TABLE withdrawal(
-    observation INTEGER PRIMARY KEY REFERENCES observation(number), -- what does not count any longer
+    observation INTEGER PRIMARY KEY REFERENCES observation(number), -- what is withdrawn
     seq INTEGER NOT NULL REFERENCES entry(seq),                     -- the entry that withdrew it
-    replaced_by INTEGER REFERENCES observation(number)              -- what counts instead; NULL: nothing
+    replaced_by INTEGER REFERENCES observation(number)              -- what counts instead, or NULL
 ) STRICT;
 
 CREATE INDEX withdrawal_of_seq ON withdrawal(seq);

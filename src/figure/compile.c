@@ -14,14 +14,19 @@
 
 /* --- nodes --- */
 
-node_id compile_const(struct building *b, double value, struct dim d, const char *text)
+static void remember_literal(struct figures *f, node_id n, const char *text)
 {
-    struct figures *f = b->figures;
-    node_id n = graph_const(f->graph, value, d);
     while (f->literals.n <= n)
         *array_push(f->arena, &f->literals) = NULL;
     if (!f->literals.at[n])
         f->literals.at[n] = text;
+}
+
+node_id compile_const(struct building *b, double value, struct dim d, const char *text)
+{
+    struct figures *f = b->figures;
+    node_id n = graph_const(f->graph, value, d);
+    remember_literal(f, n, text);
     return n;
 }
 
@@ -46,7 +51,7 @@ node_id compile_expr(struct building *b, const struct expr *e)
     case EXPR_NAME:
     case EXPR_FAILS: return compiled_main_node(b, e->name);
     case EXPR_FREQUENCY: return compile_frequency(b, e->name);
-    case EXPR_CLEARANCE: return compile_expr(b, b->clearance);
+    case EXPR_CLEARANCE: return b->clearance;
     case EXPR_ADD: return compile_call(b, OP_ADD, e);
     case EXPR_SUBTRACT: return compile_call(b, OP_SUBTRACT, e);
     case EXPR_MULTIPLY: return compile_call(b, OP_MULTIPLY, e);
@@ -62,14 +67,24 @@ node_id compile_expr(struct building *b, const struct expr *e)
     case EXPR_WAS:
     case EXPR_UNWANTED: break;
     }
-    return NODE_NONE; /* refused before: quantity_unsupported */
+    return NODE_NONE; /* refused before: refuse_unsupported */
+}
+
+/* What is stated in two places is two figures with a source each, though it be the same. */
+static node_id compile_stated(struct building *b, const struct expr *e)
+{
+    struct figures *f = b->figures;
+    node_id n = compile_expr(b, e), apart = graph_apart(f->graph, n, ++f->n_stated);
+    if (e->op == EXPR_LITERAL)
+        remember_literal(f, apart, e->text);
+    return apart;
 }
 
 node_id compile_quantity(struct building *b, const struct quantity *q)
 {
     struct figures *f = b->figures;
     if (q->shape == SHAPE_EXPRESSION)
-        return compile_expr(b, q->expr);
+        return compile_stated(b, q->expr);
     *array_push(f->arena, &f->inputs) = q;
     return graph_input(f->graph, (uint32_t)(f->inputs.n - 1), quantity_mean(q), q->dim);
 }
@@ -87,9 +102,12 @@ const char *quantity_reads(struct figures *f, const struct quantity *q)
     return q->shape == SHAPE_EXPRESSION ? expr_reads(f->arena, q->expr) : q->text;
 }
 
+/* --- what is stored only --- */
+
+/* The first quantity of an object that this version does not evaluate. */
 struct unsupported {
     struct arena *arena;
-    const char *text;
+    const char *path, *text; /* "response/main/sees/is", "unwanted(MAIN)"; or NULL */
 };
 
 static void look_for_unsupported(void *ctx, const struct expr *e)
@@ -99,26 +117,45 @@ static void look_for_unsupported(void *ctx, const struct expr *e)
         u->text = arena_printf(u->arena, "unwanted(%s)", e->name);
 }
 
-const char *quantity_unsupported(struct arena *a, const struct quantity *q)
+static enum walk look_at_field(void *ctx, const struct visit *v)
 {
-    struct unsupported u = {a, NULL};
+    struct unsupported *u = ctx;
+    if (v->field->flags & LATER)
+        return WALK_PAST;
+    if (v->field->type != FIELD_QUANTITY || u->text)
+        return WALK_INTO;
+    const struct quantity *q = *(struct quantity *const *)v->member;
     if (q->shape == SHAPE_EXPRESSION && q->expr)
-        expr_walk(q->expr, look_for_unsupported, &u);
-    return u.text;
+        expr_walk(q->expr, look_for_unsupported, u);
+    if (u->text)
+        u->path = arena_str(u->arena, v->path);
+    return WALK_INTO;
+}
+
+/* Only `unwanted` refers to something that must be a scheme and nothing else: most objects
+ * need not be walked. */
+static bool may_be_unsupported(const struct object *o)
+{
+    for (size_t i = 0; i < o->refs.n; i++)
+        if (o->refs.at[i].kinds == KIND_BIT(KIND_SCHEME))
+            return true;
+    return false;
+}
+
+static ohmen_status refuse_unsupported(struct figures *f, const struct object *o, ohmen_error *e)
+{
+    struct unsupported u = {.arena = f->arena};
+    struct walker w = {.ctx = &u, .enter = look_at_field};
+    if (may_be_unsupported(o))
+        walk_table(f->arena, kinds[o->kind].table, o->node, o->data, &w);
+    if (!u.text)
+        return OHMEN_OK;
+    return error_set(e, OHMEN_COMPUTE,
+                     "%s.%s uses %s, which this version stores but does not evaluate", o->id,
+                     u.path, u.text);
 }
 
 /* --- objects --- */
-
-static ohmen_status refuse_unsupported(struct figures *f, const struct object *o,
-                                       const struct quantity *q, const char *key, ohmen_error *e)
-{
-    const char *what = quantity_unsupported(f->arena, q);
-    if (!what)
-        return OHMEN_OK;
-    return error_set(e, OHMEN_COMPUTE,
-                     "%s.%s uses %s, which this version stores but does not evaluate", o->id, key,
-                     what);
-}
 
 /* A leaf or an expression as the main figure of its unit. */
 static struct compiled *compile_main(struct figures *f, const struct variant *v,
@@ -138,10 +175,25 @@ static ohmen_status compile_value(struct figures *f, const struct variant *v,
 {
     const struct value *value = o->data;
     const struct quantity *q = value->is ? value->is : value->varies;
-    ohmen_status status = refuse_unsupported(f, o, q, "value", e);
-    if (status == OHMEN_OK)
-        *out = compile_main(f, v, o, PROPERTY_VALUE, q, value->source);
-    return status;
+    (void)e;
+    *out = compile_main(f, v, o, PROPERTY_VALUE, q, value->source);
+    return OHMEN_OK;
+}
+
+/* Does the form that a prior names, if it names one, go with the keys that it gives? */
+static bool form_fits(const struct prior *p)
+{
+    const char *form = p->form < 0 ? NULL : prior_forms[p->form];
+    if (p->p5 || p->p50 || p->p95 || p->p99 || (p->weight && p->error_factor) ||
+        (p->mean && p->median))
+        return false;
+    if (!form)
+        return true;
+    if (p->weight)
+        return text_equal(form, "gamma");
+    if (p->error_factor)
+        return text_equal(form, "lognormal");
+    return text_equal(form, "fixed") || text_equal(form, "constrained");
 }
 
 /* The distribution that a prior states, by the keys that it gives. NULL: a form that this
@@ -180,7 +232,9 @@ static struct quantity *prior_distribution(struct arena *a, const struct prior *
 static struct quantity *prior_by_form(struct arena *a, const struct prior *p)
 {
     const char *form = p->form < 0 ? "" : prior_forms[p->form];
-    if (!p->mean || p->weight || p->error_factor || p->p5 || p->p95 || p->p50 || p->p99)
+    if (!form_fits(p))
+        return NULL;
+    if (!p->mean || p->weight || p->error_factor)
         return prior_distribution(a, p);
     if (text_equal(form, "fixed"))
         return p->mean;
@@ -208,11 +262,9 @@ static ohmen_status compile_rate(struct figures *f, const struct variant *v, con
             "knows a mean with a weight, a mean or a median with an error factor, and the "
             "forms constrained and fixed with a mean",
             o->id);
-    ohmen_status status = refuse_unsupported(f, o, q, "is", e);
     const char *source = r->prior && r->prior->source ? r->prior->source : r->source;
-    if (status == OHMEN_OK)
-        *out = compile_main(f, v, o, PROPERTY_RATE, q, source);
-    return status;
+    *out = compile_main(f, v, o, PROPERTY_RATE, q, source);
+    return OHMEN_OK;
 }
 
 /* Beta posterior of counts: a0 + failures, b0 + successes (conjugate; NASA/SP-2009-569). */
@@ -226,8 +278,10 @@ static const struct quantity *record_quantity(struct arena *a, const struct dema
         .shape = SHAPE_BETA,
         .p = {prior + (double)r->failures, prior + (double)(r->demands - r->failures)},
         .times = 1};
-    q->text = arena_printf(a, "%s prior with %lld failures in %lld demands",
-                           demand_priors[r->prior], (long long)r->failures, (long long)r->demands);
+    q->text = arena_printf(a, "%s prior with %lld failure%s in %lld demand%s",
+                           demand_priors[r->prior], (long long)r->failures,
+                           r->failures == 1 ? "" : "s", (long long)r->demands,
+                           r->demands == 1 ? "" : "s");
     return q;
 }
 
@@ -236,10 +290,9 @@ static ohmen_status compile_record(struct figures *f, const struct variant *v,
                                    const char *source, struct compiled **out, ohmen_error *e)
 {
     const struct quantity *q = record_quantity(f->arena, r);
-    ohmen_status status = refuse_unsupported(f, o, q, "per-demand", e);
-    if (status == OHMEN_OK)
-        *out = compile_main(f, v, o, PROPERTY_FAILS, q, r->source ? r->source : source);
-    return status;
+    (void)e;
+    *out = compile_main(f, v, o, PROPERTY_FAILS, q, r->source ? r->source : source);
+    return OHMEN_OK;
 }
 
 /* An element without data of its own is its type. */
@@ -299,10 +352,13 @@ static ohmen_status compile_one_reference(struct figures *f, const struct varian
 ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
                                 ohmen_error *e)
 {
+    ohmen_status fine = refuse_unsupported(f, o, e);
+    if (fine != OHMEN_OK)
+        return fine;
     for (size_t i = 0; i < o->refs.n; i++) {
         const struct reference *r = &o->refs.at[i];
         const struct object *to = model_find(v->model, r->id);
-        if (r->trace || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
+        if (r->trace || r->later || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
             to->kind == KIND_COMMON_CAUSE)
             continue;
         ohmen_status status = compile_one_reference(f, v, to, e);

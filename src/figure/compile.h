@@ -10,7 +10,7 @@ struct building {
     struct figures *figures;
     const struct variant *variant; /* projected */
     struct compiled *unit;
-    const struct expr *clearance; /* of the row that is being compiled, or NULL */
+    node_id clearance; /* time of the row that is being compiled */
 };
 
 /* Opens the section of a new unit and registers it under its key; close with
@@ -18,6 +18,8 @@ struct building {
 void compiled_begin(struct figures *f, const struct variant *projected, const struct object *o,
                     const char *id, struct building *b);
 void compiled_end(struct building *b);
+/* Closes the section of a unit that could not be compiled: nobody will find it. */
+void compiled_give_up(struct building *b);
 
 /* Registers a figure of the unit under construction. */
 figure_id compiled_add(struct building *b, enum property p, const char *q1, const char *q2,
@@ -31,7 +33,8 @@ ohmen_status variant_project(struct figures *f, const struct variant *v, const c
 const struct compiled *compiled_of(const struct building *b, const char *id);
 node_id compiled_main_node(const struct building *b, const char *id);
 
-/* Compiles everything that an object refers to for computing. */
+/* Compiles everything that an object refers to for computing. OHMEN_COMPUTE when one of its
+ * quantities is of a sort that this version stores but does not evaluate. */
 ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
                                 ohmen_error *e);
 
@@ -42,9 +45,6 @@ node_id compile_expr(struct building *b, const struct expr *e);
 node_id compile_quantity(struct building *b, const struct quantity *q);
 /* How a quantity reads: its canonical text, or that of the distribution. */
 const char *quantity_reads(struct figures *f, const struct quantity *q);
-
-/* First expression below q that this version does not evaluate, or NULL. */
-const char *quantity_unsupported(struct arena *a, const struct quantity *q);
 
 ohmen_status compile_hazard(struct figures *f, const struct variant *v, const struct object *o,
                             struct compiled **out, ohmen_error *e);

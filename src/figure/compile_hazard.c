@@ -256,23 +256,9 @@ static void add_ends(struct tree *t, struct hazard_exports *x, const struct diag
 
 /* --- the hazard --- */
 
-static ohmen_status refuse_hazard(struct figures *f, const struct object *o, ohmen_error *e)
-{
-    const struct hazard *h = o->data;
-    const char *what = quantity_unsupported(f->arena, h->frequency);
-    if (!what)
-        return OHMEN_OK;
-    return error_set(e, OHMEN_COMPUTE,
-                     "%s.frequency uses %s, which this version stores but does not evaluate", o->id,
-                     what);
-}
-
 ohmen_status compile_hazard(struct figures *f, const struct variant *v, const struct object *o,
                             struct compiled **out, ohmen_error *e)
 {
-    ohmen_status status = refuse_hazard(f, o, e);
-    if (status != OHMEN_OK)
-        return status;
     struct building b;
     struct hazard_exports *x = NEW(f->arena, struct hazard_exports);
     compiled_begin(f, v, o, o->id, &b);
@@ -286,7 +272,7 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
     grow_rows(&t);
     const struct diagram *d = t.wiring.too_deep ? NULL : freeze(&t);
     if (!d) {
-        compiled_end(&b);
+        compiled_give_up(&b);
         return error_set(
             e, OHMEN_COMPUTE,
             "the response of \"%s\" is too intertwined: its schemes need more than %u diagram "
@@ -315,7 +301,7 @@ ohmen_status compile_scheme(struct figures *f, const struct variant *v, const st
     bfun fails = diagram_not(w.builder, wiring_works(&w, o->id));
     const struct diagram *d = w.too_deep ? NULL : diagram_freeze(f->arena, w.builder, 1, &fails);
     if (!d) {
-        compiled_end(&b);
+        compiled_give_up(&b);
         return error_set(
             e, OHMEN_COMPUTE,
             "the scheme \"%s\" is too intertwined: it needs more than %u diagram nodes, or "

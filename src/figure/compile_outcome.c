@@ -70,6 +70,17 @@ static struct items plain_items(struct tree *t, size_t k)
     return items;
 }
 
+/* The clearance time of a row, which becomes a figure where something first depends on it. */
+static node_id clearance_of(struct tree *t, const struct spot *at)
+{
+    struct building *b = t->building;
+    figure_id id = compiled_figure(b->figures, b->unit, PROPERTY_CLEARANCE, at->row, NULL);
+    if (id == FIGURE_NONE)
+        id = compiled_add(b, PROPERTY_CLEARANCE, at->row, NULL, compile_quantity(b, at->in),
+                          t->hazard->source, quantity_reads(b->figures, at->in));
+    return figure_at(b->figures, id)->node;
+}
+
 /* An outcome's damage at one end, with that row's clearance time. */
 static figure_id damage_at_end(struct tree *t, size_t k, const struct items *plain, size_t e)
 {
@@ -84,11 +95,7 @@ static figure_id damage_at_end(struct tree *t, size_t k, const struct items *pla
         nodes[n] = plain->nodes[n];
         n++;
     }
-    b->clearance = end->spot.in->expr;
-    if (compiled_figure(b->figures, b->unit, PROPERTY_CLEARANCE, end->spot.row, NULL) ==
-        FIGURE_NONE)
-        compiled_add(b, PROPERTY_CLEARANCE, end->spot.row, NULL, compile_expr(b, b->clearance),
-                     t->hazard->source, quantity_reads(b->figures, end->spot.in));
+    b->clearance = clearance_of(t, &end->spot);
     for (size_t i = 0; i < o->damage.n; i++) {
         const struct damage_item *item = ROW(struct damage_item, o->damage, i);
         if (!counts(b->figures, item) || !is_timed(item))

@@ -98,6 +98,7 @@ struct figures {
     ARRAY(const struct quantity *) inputs;
     ARRAY(figure_id) of_node;     /* first figure of a node */
     ARRAY(const char *) literals; /* text of a CONST node, or NULL */
+    uint32_t n_stated;            /* expressions that documents state, each a node of its own */
     unsigned depth;
 };
 

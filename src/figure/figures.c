@@ -80,6 +80,13 @@ void compiled_end(struct building *b)
     graph_section_end(b->figures->graph);
 }
 
+void compiled_give_up(struct building *b)
+{
+    struct figures *f = b->figures;
+    compiled_end(b);
+    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, b->unit->id, b->variant), NULL);
+}
+
 static void name_node(struct figures *f, node_id node, figure_id id)
 {
     while (f->of_node.n <= node)

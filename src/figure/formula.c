@@ -33,8 +33,17 @@ static void meet(struct writing *w, figure_id id)
     *array_push(w->arena, w->names) = id;
 }
 
+/* A constant that is no stated number, such as a sum of nothing, is nobody's. */
+static bool is_nobodys(const struct writing *w, node_id n)
+{
+    const struct graph_node *node = graph_at(w->f->graph, n);
+    return node->op == OP_CONST && node->extra == 0;
+}
+
 static figure_id named(const struct writing *w, node_id n)
 {
+    if (is_nobodys(w, n))
+        return FIGURE_NONE;
     figure_id id = n < w->f->of_node.n ? w->f->of_node.at[n] : FIGURE_NONE;
     return id == w->self ? FIGURE_NONE : id;
 }

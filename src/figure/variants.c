@@ -24,7 +24,7 @@ static const char *variant_key(struct arena *a, size_t n, const char *const *opt
 
 static bool computes(const struct reference *r, const struct object *to)
 {
-    return !r->trace && to && kinds[to->kind].computes;
+    return !r->trace && !r->later && to && kinds[to->kind].computes;
 }
 
 /* id -> the base objects that refer to it for computing. */
@@ -66,7 +66,7 @@ static void reach(struct reaching *w, const char *id)
 static bool refers_to(const struct object *o, const char *id)
 {
     for (size_t r = 0; r < o->refs.n; r++)
-        if (!o->refs.at[r].trace && text_equal(o->refs.at[r].id, id))
+        if (!o->refs.at[r].trace && !o->refs.at[r].later && text_equal(o->refs.at[r].id, id))
             return true;
     return false;
 }

@@ -54,7 +54,7 @@ static struct node *wrap(struct binding *b, const struct table *t, const struct 
     return map;
 }
 
-/* Moves all, any, at-least and of below the short key. */
+/* Moves all, any, at-least and of below the short key; NULL when that is there too. */
 static const struct node *gather_structure(struct binding *b, const struct table *t,
                                            const struct node *map)
 {
@@ -75,7 +75,7 @@ static const struct node *gather_structure(struct binding *b, const struct table
     if (other) {
         diag_add(b->diags, structure->place, "\"%s\" and \"%s\" say the same thing twice",
                  t->short_key, structure->pairs[0].key);
-        return map;
+        return NULL;
     }
     node_add(b->arena, rest, t->short_key, structure->place, structure);
     return rest;
@@ -92,12 +92,18 @@ static const struct node *expand(struct binding *b, const struct table *t, const
     }
     if (t->short_key && (node->type == NODE_SCALAR || t->structure_keys))
         return wrap(b, t, node);
-    diag_add(b->diags, node->place, "expected a map that describes a %s, found %s", t->name,
+    diag_add(b->diags, node->place, "expected a map that describes the %s, found %s", t->name,
              bind_node_words(node));
     return NULL;
 }
 
 /* --- tables --- */
+
+/* "an element", "a scheme". */
+static const char *with_article(struct binding *b, const char *name)
+{
+    return arena_printf(b->arena, "%s %s", strchr("aeiou", *name) ? "an" : "a", name);
+}
 
 static void unknown_key(struct binding *b, const struct table *t, const struct pair *p)
 {
@@ -105,7 +111,7 @@ static void unknown_key(struct binding *b, const struct table *t, const struct p
     nearest_init(&near, p->key);
     for (size_t i = 0; i < t->n_fields; i++)
         nearest_offer(&near, t->fields[i].key);
-    diag_add(b->diags, p->place, "a %s has no key \"%s\"%s", t->name, p->key,
+    diag_add(b->diags, p->place, "%s has no key \"%s\"%s", with_article(b, t->name), p->key,
              bind_suggest(b->arena, &near));
 }
 
@@ -161,8 +167,8 @@ static bool check_group(struct binding *b, const struct table *t, const struct g
         if (!member)
             continue;
         if (first) {
-            diag_add(b->diags, p->place, "a %s has \"%s\" or \"%s\", not both", t->name, first->key,
-                     p->key);
+            diag_add(b->diags, p->place, "%s has \"%s\" or \"%s\", not both",
+                     with_article(b, t->name), first->key, p->key);
             return false;
         }
         first = p;
@@ -237,10 +243,8 @@ static bool check_row_key(struct binding *b, const struct field *f, const struct
     }
     if (name_is_valid(b->units, p->key))
         return true;
-    diag_add(b->diags, p->place,
-             "\"%s\" cannot be a name: names are letters, digits and hyphens, begin with a letter, "
-             "have at most 64 characters, and are neither units nor reserved words",
-             p->key);
+    diag_add(b->diags, p->place, "\"%s\" cannot be a name: %s", p->key,
+             name_objection(b->units, p->key));
     return false;
 }
 

@@ -6,21 +6,51 @@
 
 #include <math.h>
 
-bool bind_is_quantity_key(const char *key)
+/* Calls offer for every key that makes a distribution. */
+static void quantity_keys(void (*offer)(void *ctx, const char *key), void *ctx)
 {
     static const char *const own[] = {"shape", "times", "range", "values"};
     for (size_t i = 0; i < sizeof own / sizeof *own; i++)
-        if (text_equal(key, own[i]))
-            return true;
+        offer(ctx, own[i]);
     for (size_t s = 0; s < quantity_n_shapes; s++) {
         const struct quantity_shape *shape = &quantity_shapes[s];
         for (size_t k = 0; k < 3 && shape->keys[k]; k++)
-            if (text_equal(key, shape->keys[k]))
-                return true;
-        if (shape->also && text_equal(key, shape->also))
-            return true;
+            offer(ctx, shape->keys[k]);
+        if (shape->also)
+            offer(ctx, shape->also);
     }
-    return false;
+}
+
+struct wanted_key {
+    const char *key;
+    bool found;
+};
+
+static void compare_key(void *ctx, const char *key)
+{
+    struct wanted_key *wanted = ctx;
+    wanted->found = wanted->found || text_equal(wanted->key, key);
+}
+
+bool bind_is_quantity_key(const char *key)
+{
+    struct wanted_key wanted = {key, false};
+    quantity_keys(compare_key, &wanted);
+    return wanted.found;
+}
+
+static void offer_key(void *near, const char *key)
+{
+    nearest_offer(near, key);
+}
+
+static void unknown_key(struct binding *b, const struct pair *p)
+{
+    struct nearest near;
+    nearest_init(&near, p->key);
+    quantity_keys(offer_key, &near);
+    diag_add(b->diags, p->place, "a distribution has no key \"%s\"%s", p->key,
+             bind_suggest(b->arena, &near));
 }
 
 /* --- ranges --- */
@@ -211,8 +241,6 @@ static struct node *take_times(struct binding *b, struct parts *p, const struct 
 
 static struct node *take_parameter(struct binding *b, struct parts *p, const struct pair *pair)
 {
-    if (b->change && bind_is_removal(b, pair->value))
-        return node_scalar(b->arena, FORM_NO, "no", pair->value->place);
     if (b->change && pair->value->type == NODE_SCALAR) {
         struct quantity *q =
             quantity_parse(b->arena, b->units, pair->value->text, pair->value->place, b->diags);
@@ -299,10 +327,25 @@ static struct quantity *build(struct binding *b, struct parts *p, const struct n
                           map->place, b->diags);
 }
 
+static struct node *take_range(struct binding *b, struct parts *p, const struct node *value)
+{
+    if (!quantity_parse(b->arena, b->units, value->text, value->place, b->diags))
+        return NULL;
+    p->range = value;
+    return node_scalar(b->arena, FORM_TEXT, quantity_canonical(b->arena, b->units, value->text),
+                       value->place);
+}
+
 static struct node *take(struct binding *b, struct parts *p, const struct pair *pair,
                          struct rows *discrete)
 {
     const struct node *value = pair->value;
+    if (!bind_is_quantity_key(pair->key)) {
+        unknown_key(b, pair);
+        return NULL;
+    }
+    if (bind_is_removal(b, value))
+        return node_scalar(b->arena, FORM_NO, "no", value->place);
     if (text_equal(pair->key, "values"))
         return bind_field(b, &discrete_rows, value, b->change ? NULL : discrete);
     if (text_equal(pair->key, "shape") || text_equal(pair->key, "range")) {
@@ -311,11 +354,8 @@ static struct node *take(struct binding *b, struct parts *p, const struct pair *
                      bind_node_words(value));
             return NULL;
         }
-        if (text_equal(pair->key, "range")) {
-            p->range = value;
-            return node_scalar(b->arena, FORM_TEXT,
-                               quantity_canonical(b->arena, b->units, value->text), value->place);
-        }
+        if (text_equal(pair->key, "range"))
+            return take_range(b, p, value);
         p->shape = value->text;
         p->shape_at = value->place;
         return node_scalar(b->arena, FORM_TEXT, value->text, value->place);

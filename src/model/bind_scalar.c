@@ -7,19 +7,20 @@
 
 #define LARGEST_COUNT INT64_C(9007199254740991) /* 2^53 - 1: canonical JSON holds it exactly */
 
+/* Stays quoted where it was: in a change the text "no" is not the removal `no`. */
 static struct node *text_node(struct binding *b, const struct node *node)
 {
-    return node_scalar(b->arena, FORM_TEXT, node->text, node->place);
+    struct node *text = node_scalar(b->arena, FORM_TEXT, node->text, node->place);
+    text->quoted = node->quoted;
+    return text;
 }
 
 static bool is_name(struct binding *b, const struct node *node)
 {
     if (name_is_valid(b->units, node->text))
         return true;
-    diag_add(b->diags, node->place,
-             "\"%s\" cannot be a name: names are letters, digits and hyphens, begin with a letter, "
-             "have at most 64 characters, and are neither units nor reserved words",
-             node->text);
+    diag_add(b->diags, node->place, "\"%s\" cannot be a name: %s", node->text,
+             name_objection(b->units, node->text));
     return false;
 }
 

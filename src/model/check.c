@@ -25,15 +25,30 @@ static void offer_objects(const struct offering *f)
         }
 }
 
-static void unknown_reference(struct checking *c, const struct reference *r)
+/* In a document, or in an object that the register holds already. */
+static struct place place_of(struct checking *c, const struct object *o, const struct reference *r)
+{
+    struct place at = r->place;
+    if (at.line == 0)
+        at.path = arena_printf(c->arena, "%s/%s/%s", kinds[o->kind].section, o->id, r->path);
+    return at;
+}
+
+static void unknown_reference(struct checking *c, const struct object *o, const struct reference *r)
 {
     struct nearest near;
     nearest_init(&near, r->id);
     offer_objects(&(struct offering){c->model, &near, r->kinds});
     const char *best = nearest_take(&near);
     const char *hint = best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "";
-    diag_add(c->diags, r->place, "there is no \"%s\"; expected %s%s", r->id,
+    diag_add(c->diags, place_of(c, o, r), "there is no \"%s\"; expected %s%s", r->id,
              kinds_words(c->arena, r->kinds), hint);
+}
+
+/* Is it there, but so wrong that it could not be bound? That was told already. */
+static bool is_unbound(const struct model *m, const char *id)
+{
+    return !m->below && strmap_has(&m->by_id, id) && !strmap_get(&m->by_id, id);
 }
 
 void check_references(struct checking *c, const struct object *o)
@@ -41,10 +56,12 @@ void check_references(struct checking *c, const struct object *o)
     for (size_t i = 0; i < o->refs.n; i++) {
         const struct reference *r = &o->refs.at[i];
         const struct object *to = model_find(c->model, r->id);
+        if (!to && is_unbound(c->model, r->id))
+            continue;
         if (!to)
-            unknown_reference(c, r);
+            unknown_reference(c, o, r);
         else if (!(r->kinds & KIND_BIT(to->kind)))
-            diag_add(c->diags, r->place, "\"%s\" is %s; expected %s", r->id,
+            diag_add(c->diags, place_of(c, o, r), "\"%s\" is %s; expected %s", r->id,
                      kinds_words(c->arena, KIND_BIT(to->kind)), kinds_words(c->arena, r->kinds));
     }
 }

@@ -13,7 +13,7 @@
 void check_shares(struct checking *c, const struct node *map, const struct rows *shares,
                   const struct quantity *(*share)(const struct rows *, size_t), const char *what)
 {
-    double sum = 0;
+    long double sum = 0; /* so that it rounds as the figure's own sum does */
     size_t rest = 0;
     bool constant = true;
     for (size_t i = 0; i < shares->n; i++) {
@@ -33,14 +33,14 @@ void check_shares(struct checking *c, const struct node *map, const struct rows 
     else if (rest == 0 && !constant)
         diag_add(c->diags, map->place,
                  "one of the %s must be the rest, since not all are plain numbers", what);
-    else if (rest == 0 && fabs(sum - 1) > SHARE_TOLERANCE)
+    else if (rest == 0 && fabsl(sum - 1) > SHARE_TOLERANCE)
         diag_add(c->diags, map->place,
                  "the %s sum to %s %%, expected 100 %%; one of them may be rest", what,
-                 text_double(text, round(sum * 1e10) / 1e8));
-    else if (rest == 1 && sum > 1 + SHARE_TOLERANCE)
+                 text_double(text, round((double)sum * 1e10) / 1e8));
+    else if (rest == 1 && (double)sum > 1)
         diag_add(c->diags, map->place,
                  "the %s sum to %s %% already, which leaves nothing for the rest", what,
-                 text_double(text, round(sum * 1e10) / 1e8));
+                 text_double(text, round((double)sum * 1e10) / 1e8));
 }
 
 static const struct quantity *share_of_branch(const struct rows *rows, size_t i)

@@ -71,11 +71,11 @@ static void add_section(struct merging *m, enum kind kind, const struct node *se
     for (size_t i = 0; i < section->n; i++) {
         const struct pair *p = &section->pairs[i];
         struct entry *e;
-        if (!name_is_valid(&m->units, p->key) || text_equal(p->key, REGISTER_ID))
-            diag_add(m->diags, p->place,
-                     "\"%s\" cannot be an id: ids are letters, digits and hyphens, begin with a "
-                     "letter, have at most 64 characters, and are neither units nor reserved words",
-                     p->key);
+        if (!name_is_valid(&m->units, p->key))
+            diag_add(m->diags, p->place, "\"%s\" cannot be an id: %s", p->key,
+                     name_objection(&m->units, p->key));
+        else if (text_equal(p->key, REGISTER_ID))
+            diag_add(m->diags, p->place, "\"%s\" is the id of the settings", REGISTER_ID);
         else if (new_entry(m, kind, p->key, p->place, &e))
             e->node = p->value;
     }

@@ -104,6 +104,7 @@ static void field_words(struct text *out, const struct field *f)
 struct spreading {
     struct text *out;
     const struct strmap *elsewhere;
+    const struct table *above[SPREAD + 1]; /* being spread out now */
     unsigned depth;
 };
 
@@ -122,17 +123,26 @@ static const char *need_words(const struct table *t, const struct field *f)
 static void table_rows(struct spreading *s, const struct table *t, const char *above,
                        unsigned flags);
 
+/* Is the table named where a field leads to it, and not spread out? */
+static bool is_named(const struct spreading *s, const struct table *t)
+{
+    bool named = strmap_has(s->elsewhere, t->name) || s->depth == SPREAD;
+    for (unsigned i = 0; i <= s->depth; i++)
+        named = named || s->above[i] == t;
+    return named;
+}
+
 /* The rows below a field that leads to a table; `NAME` stands for the key of rows. */
 static void spread(struct spreading *s, const struct field *f, const char *key, unsigned flags)
 {
     const struct table *below = field_table(f);
-    if (!below || strmap_has(s->elsewhere, below->name) || s->depth == SPREAD)
+    if (!below || is_named(s, below))
         return;
     const char *path = key;
     for (; f->type == FIELD_ROWS || f->type == FIELD_LIST; f = f->part)
         if (f->type == FIELD_ROWS)
             path = arena_printf(s->out->arena, "%s.%s", path, f->year_keys ? "YEAR" : "NAME");
-    s->depth++;
+    s->above[++s->depth] = below;
     table_rows(s, below, path, flags);
     s->depth--;
 }
@@ -143,8 +153,7 @@ static void table_rows(struct spreading *s, const struct table *t, const char *a
     for (size_t i = 0; i < t->n_fields; i++) {
         const struct field *f = &t->fields[i];
         unsigned all = flags | f->flags;
-        const char *key =
-            arena_printf(s->out->arena, "%s%s%s", above, *above ? "." : "", f->key);
+        const char *key = arena_printf(s->out->arena, "%s%s%s", above, *above ? "." : "", f->key);
         text_printf(s->out, "| `%s` | ", key);
         field_words(s->out, f);
         text_printf(s->out, " | %s | %s | %s |\n", need_words(t, f), all & LATER ? "stored" : "yes",
@@ -155,7 +164,7 @@ static void table_rows(struct spreading *s, const struct table *t, const char *a
 
 void fields_markdown(struct text *out, const struct table *t, const struct strmap *elsewhere)
 {
-    struct spreading s = {out, elsewhere, 0};
+    struct spreading s = {.out = out, .elsewhere = elsewhere, .above = {t}};
     text_add(out, "| key | expects | needed | used | |\n| --- | --- | --- | --- | --- |\n");
     table_rows(&s, t, "", 0);
 }
@@ -214,10 +223,10 @@ static bool find_blocks(struct filling *f, const char *document)
             opened = 0;
         if (!name)
             continue;
-        const char *wrong = !table_named(f, name)              ? "there is no table"
+        const char *wrong = !table_named(f, name)          ? "there is no table"
                             : strmap_has(&f->blocks, name) ? "there are two blocks of"
-                            : opened                           ? "no end before the block of"
-                                                               : NULL;
+                            : opened                       ? "no end before the block of"
+                                                           : NULL;
         if (wrong)
             *f->problem = arena_printf(f->arena, "%zu: %s \"%s\"", number, wrong, name);
         if (wrong)

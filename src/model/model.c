@@ -112,20 +112,18 @@ static void add_object(struct model *m, struct object *o)
         m->settings = o->data;
 }
 
-static bool bind_all(struct model *m, const struct model_source *sources, size_t n, struct diags *d)
+/* An object with a fault of its own keeps its id, without a struct. */
+static void bind_all(struct model *m, const struct model_source *sources, size_t n, struct diags *d)
 {
     struct model_source *sorted = arena_copy(m->arena, sources, n * sizeof *sources);
     qsort(sorted, n, sizeof *sorted, by_kind_and_id);
-    bool fine = true;
     for (size_t i = 0; i < n; i++) {
         struct object *o = bind_source(m, &sorted[i], d);
-        fine = fine && o;
         if (o)
             add_object(m, o);
         else
             strmap_set(m->arena, &m->by_id, sorted[i].id, NULL);
     }
-    return fine;
 }
 
 /* Each option alone must leave a register without fault. */
@@ -160,9 +158,10 @@ struct model *model_load(struct arena *a, const struct model_source *sources, si
     }
     m->units = model_units(a, settings);
     bool counts = check_counts(settings, d);
-    if (!bind_all(m, sources, n, d) || !counts || !m->settings)
+    bind_all(m, sources, n, d);
+    if (!counts || !m->settings)
         return NULL;
-    check_all(m, d);
+    check_all(m, d); /* of what was bound: one run tells all that is wrong */
     if (d->count == errors)
         check_options(m, d);
     return d->count == errors ? m : NULL;

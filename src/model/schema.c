@@ -7,7 +7,7 @@
  * tables_all, keys in the order in which they are put. */
 #include "model/schema.h"
 
-#include "doc/json.h"
+#include "model/schema_text.h"
 #include "model/tables_all.h"
 
 struct schema {
@@ -76,9 +76,8 @@ static const char *defined(const struct schema *s, const char *prefix, const cha
 
 static struct node *ref(const struct schema *s, const char *prefix, const char *name)
 {
-    return one_key(
-        s, "$ref",
-        text(s, arena_printf(s->arena, "#/$defs/%s", defined(s, prefix, name))));
+    return one_key(s, "$ref",
+                   text(s, arena_printf(s->arena, "#/$defs/%s", defined(s, prefix, name))));
 }
 
 static struct node *either(const struct schema *s, struct node *first, struct node *second)
@@ -133,8 +132,7 @@ static struct node *set_schema(const struct schema *s, const struct field *f)
     if (f->type == FIELD_ORDERED)
         return list;
     put(s, list, "uniqueItems", truth(s, true));
-    return s->part ? either(s, list, map_of(s, ref(s, "", "name"), ref(s, "", "yes-or-no")))
-                   : list;
+    return s->part ? either(s, list, map_of(s, ref(s, "", "name"), ref(s, "", "yes-or-no"))) : list;
 }
 
 static struct node *word_schema(const struct schema *s, const struct field *f)
@@ -421,9 +419,9 @@ static struct node *described(const struct schema *s, const char *help, struct n
 
 static void define_quantities(const struct schema *s, struct node *defs)
 {
-    struct node *certain = described(
-        s, "A number with its unit, or an expression, such as 8 section * bus-fault",
-        scalar_schema(s));
+    struct node *certain =
+        described(s, "A number with its unit, or an expression, such as 8 section * bus-fault",
+                  scalar_schema(s));
     put(s, defs, "certain-quantity", certain);
     put(s, defs, "distribution", distribution_schema(s));
     put(s, defs, "quantity",
@@ -502,8 +500,7 @@ static struct node *change_schema(struct schema *s)
     s->part = true;
     for (int k = 0; k < KIND_COUNT; k++)
         if (is_changeable(k)) {
-            struct node *object =
-                either(s, ref(s, "", "removal"), table_schema(s, kinds[k].table));
+            struct node *object = either(s, ref(s, "", "removal"), table_schema(s, kinds[k].table));
             put(s, sections, kinds[k].section, map_of(s, ref(s, "", "name"), object));
         }
     s->part = false;
@@ -514,7 +511,7 @@ static struct node *change_schema(struct schema *s)
     return put(s, def, "additionalProperties", truth(s, false));
 }
 
-/* --- the whole --- */
+/* --- sections --- */
 
 static struct node *section_schema(const struct schema *s, int k)
 {
@@ -523,8 +520,8 @@ static struct node *section_schema(const struct schema *s, int k)
     const struct table *t = kinds[k].table;
     if (k == KIND_REGISTER)
         return ref(s, "", t->name);
-    struct node *object = one_key(s, "if", put(s, typed(s, "object"), "required",
-                                               texts(s, 1, like)));
+    struct node *object =
+        one_key(s, "if", put(s, typed(s, "object"), "required", texts(s, 1, like)));
     put(s, object, "then", ref(s, "like-a-", t->name));
     put(s, object, "else", table_schema(s, t));
     struct node *section = one_key(s, "description", text(s, t->help));
@@ -560,63 +557,7 @@ static struct node *definitions(struct schema *s)
     return defs;
 }
 
-/* --- writing --- */
-
-#define LINE 100
-
-static void write_pretty(struct text *out, const struct node *n, size_t indent, size_t used);
-
-static void write_flat(struct text *out, const struct node *n)
-{
-    size_t children = n->type == NODE_SCALAR ? 0 : n->n;
-    if (n->type == NODE_SCALAR) {
-        if (n->form == FORM_TEXT)
-            json_string(out, n->text);
-        else
-            text_add(out, n->form == FORM_COUNT ? n->text : n->form == FORM_YES ? "true" : "false");
-        return;
-    }
-    text_byte(out, n->type == NODE_MAP ? '{' : '[');
-    for (size_t i = 0; i < children; i++) {
-        text_add(out, i ? ", " : "");
-        if (n->type == NODE_MAP) {
-            json_string(out, n->pairs[i].key);
-            text_add(out, ": ");
-        }
-        write_flat(out, n->type == NODE_MAP ? n->pairs[i].value : n->items[i]);
-    }
-    text_byte(out, n->type == NODE_MAP ? '}' : ']');
-}
-
-static void write_children(struct text *out, const struct node *n, size_t indent)
-{
-    for (size_t i = 0; i < n->n; i++) {
-        text_add(out, i ? ",\n" : "\n");
-        text_repeat(out, " ", indent);
-        size_t line = out->n - indent;
-        if (n->type == NODE_MAP) {
-            json_string(out, n->pairs[i].key);
-            text_add(out, ": ");
-        }
-        write_pretty(out, n->type == NODE_MAP ? n->pairs[i].value : n->items[i], indent,
-                     out->n - line);
-    }
-}
-
-/* On one line where it fits behind the `used` columns. */
-static void write_pretty(struct text *out, const struct node *n, size_t indent, size_t used)
-{
-    size_t before = out->n;
-    write_flat(out, n);
-    if (n->type == NODE_SCALAR || used + (out->n - before) < LINE)
-        return;
-    out->n = before;
-    text_byte(out, n->type == NODE_MAP ? '{' : '[');
-    write_children(out, n, indent + 2);
-    text_byte(out, '\n');
-    text_repeat(out, " ", indent);
-    text_byte(out, n->type == NODE_MAP ? '}' : ']');
-}
+/* --- the document --- */
 
 void schema_write(struct text *out)
 {
@@ -630,6 +571,5 @@ void schema_write(struct text *out)
     put(&s, root, "properties", sections_schema(&s));
     put(&s, root, "additionalProperties", truth(&s, false));
     put(&s, root, "$defs", definitions(&s));
-    write_pretty(out, root, 0, 0);
-    text_byte(out, '\n');
+    schema_text(out, root);
 }

@@ -277,7 +277,7 @@ static const struct group is_or_varies[] = {{true, {"is", "varies"}}};
 static const struct field damage_fields[] = {
     F(struct damage_item, name, "name", TEXT, "What is damaged"),
     F(struct damage_item, category, "category", NAME,
-      "Category of damage: equipment, crew, lost-load, ...", .flags = REQUIRED),
+      "Category of damage, such as equipment, crew or lost-load", .flags = REQUIRED),
     F(struct damage_item, is, "is", QUANTITY, "What it costs", .dim = MONEY, .flags = NOT_NEGATIVE),
     F(struct damage_item, varies, "varies", QUANTITY,
       "What it costs, drawn anew at each occurrence", .dim = MONEY,

@@ -138,6 +138,7 @@ struct collecting {
     struct references *out;
     const struct visit *visit; /* the one being looked at */
     const char *path;
+    unsigned later; /* fields around this one that are not evaluated */
 };
 
 static void add_reference(struct collecting *c, const char *id, unsigned allowed, struct place at)
@@ -149,6 +150,7 @@ static void add_reference(struct collecting *c, const char *id, unsigned allowed
         (struct reference){.id = id,
                            .kinds = allowed,
                            .trace = (c->visit->field->flags & TRACE) != 0,
+                           .later = c->later > 0,
                            .place = at,
                            .path = c->path};
 }
@@ -197,6 +199,7 @@ static enum walk collect(void *ctx, const struct visit *v)
     struct collecting *c = ctx;
     c->visit = v;
     c->path = NULL;
+    c->later += (v->field->flags & LATER) != 0;
     switch (v->field->type) {
     case FIELD_REF: add_reference(c, v->node->text, v->field->kinds, v->node->place); break;
     case FIELD_REFS: references_of_set(c, v->node); break;
@@ -218,10 +221,16 @@ static enum walk collect(void *ctx, const struct visit *v)
     return WALK_INTO;
 }
 
+static void collected(void *ctx, const struct visit *v)
+{
+    struct collecting *c = ctx;
+    c->later -= (v->field->flags & LATER) != 0;
+}
+
 void walk_references(struct arena *a, const struct table *t, const struct node *node,
                      const void *data, struct references *out)
 {
     struct collecting c = {.arena = a, .out = out};
-    struct walker w = {.ctx = &c, .enter = collect};
+    struct walker w = {.ctx = &c, .enter = collect, .leave = collected};
     walk_table(a, t, node, data, &w);
 }

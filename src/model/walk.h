@@ -43,6 +43,7 @@ struct reference {
     const char *id;
     unsigned kinds; /* allowed */
     bool trace;     /* computes nothing */
+    bool later;     /* stands in a field that this version does not evaluate */
     struct place place;
     const char *path; /* below the object; lives in the arena */
 };

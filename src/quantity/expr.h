@@ -20,8 +20,8 @@
  *                no reserved word; letters and digits are those of ASCII
  *
  * Reserved words: per in was within clearance-time min max exp log sqrt lookup
- * unwanted fails frequency yes no none all any of at-least absent rest, and all
- * units; `min` is the minute behind a number and the function before "(". `%` may
+ * unwanted fails frequency yes no none all any of at-least absent rest at sees (the
+ * last two part the names of figures), and all units; `min` is the minute behind a number and the function before "(". `%` may
  * follow a number directly. "/" behind a literal and before a unit belongs to the
  * literal. `lookup(x; b1 -> v1; b2 -> v2; ...)` is v of the last b that x reaches,
  * and v1 below b1; the b rise strictly.
@@ -120,6 +120,10 @@ struct place place_inside(struct place at, uint32_t column);
 
 /* May `s` name an object: grammar of names, 1..64 bytes, no reserved word or unit? */
 bool name_is_valid(const struct units *u, const char *s);
+
+/* Why `s`, which is not valid, cannot be a name: "it is a unit", "it is a reserved word", or
+ * what names are made of. */
+const char *name_objection(const struct units *u, const char *s);
 
 /* Calls offer(ctx, word) for every reserved word that is no unit. */
 void reserved_words(void (*offer)(void *ctx, const char *name), void *ctx);

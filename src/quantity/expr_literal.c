@@ -96,7 +96,7 @@ static bool number_slip(struct parser *ps, const char *end)
         return parse_fail(ps, end, "the decimal mark is a point, not a comma"), true;
     if (*end == '.' && end[1] != '.')
         return parse_fail(ps, end, is_digit(end[1]) ? "a number has only one decimal point"
-                          : "a number needs a digit behind its point: 5 or 5.0, not 5."), true;
+                          : "a number needs a digit behind its point: not 5. but 5 or 5.0"), true;
     return false;
 }
 

@@ -9,7 +9,7 @@
 static const char *const reserved[] = {
     "per", "in", "was", "within", "clearance-time", "min", "max", "exp", "log", "sqrt",
     "lookup", "unwanted", "fails", "frequency", "yes", "no", "none", "all", "any", "of",
-    "at-least", "absent", "rest",
+    "at-least", "absent", "rest", "at", "sees",
 };
 
 enum { N_RESERVED = sizeof reserved / sizeof reserved[0] };
@@ -93,6 +93,17 @@ bool name_is_valid(const struct units *u, const char *s)
            !unit_find(u, s, n, &unit);
 }
 
+const char *name_objection(const struct units *u, const char *s)
+{
+    struct unit unit;
+    if (unit_find(u, s, strlen(s), &unit))
+        return "it is a unit";
+    if (word_is_reserved(s, strlen(s)))
+        return "it is a reserved word";
+    return "names are letters, digits and hyphens, begin with a letter and do not end in a hyphen, "
+           "and have at most 64 characters";
+}
+
 void reserved_words(void (*offer)(void *ctx, const char *name), void *ctx)
 {
     for (size_t i = 0; i < N_RESERVED; i++)
@@ -101,7 +112,7 @@ void reserved_words(void (*offer)(void *ctx, const char *name), void *ctx)
 
 struct place place_inside(struct place at, uint32_t column)
 {
-    if (at.line != 0)
+    if (at.line != 0 && !at.whole)
         at.column += column;
     return at;
 }

@@ -3,8 +3,9 @@
  * numbers look as they do everywhere. Owns nothing. */
 #include "report/grid_key.h"
 
-#include <math.h>
 #include <string.h>
+
+#include "math/elementary.h"
 
 static const char *label_of(const struct grid_plane *g, size_t i)
 {
@@ -23,7 +24,7 @@ static const char *line_words(const struct grid_plane *g, const struct grid_line
 /* A line of the plane is seen when its risk is between those of two corners. */
 static bool crosses_plane(const struct grid_plane *g, double risk)
 {
-    double k = log10(risk);
+    double k = math_log10(risk);
     return k > g->frequency_low + g->damage_low && k < g->frequency_high + g->damage_high;
 }
 
@@ -81,29 +82,59 @@ static void write_list(struct page *p, const struct grid_plane *g, const char *b
         page_paragraph(p, text_str(&t), 0, INK_PLAIN);
 }
 
-static void write_company(struct page *p, const struct grid_plane *g, size_t first)
+static void add_company(struct text *t, const struct grid_plane *g, size_t first)
+{
+    for (size_t i = first; i < g->grid->marks.n; i++)
+        if (g->spots[i].placed && g->spots[i].first == first)
+            text_printf(t, "%s %s", i == first ? "" : ",", label_of(g, i));
+}
+
+static void write_company(struct page *p, const struct grid_plane *g)
 {
     struct text t;
     text_init(&t, p->arena);
-    text_printf(&t, "%zu at one place:", g->spots[first].company);
-    for (size_t i = first; i < g->grid->marks.n; i++)
-        if (g->spots[i].placed && g->spots[i].first == first)
-            text_printf(&t, "%s %s", i == first ? "" : ",", label_of(g, i));
-    page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+    for (size_t i = 0; i < g->grid->marks.n; i++) {
+        if (!g->spots[i].placed || g->spots[i].first != i || g->spots[i].company < 2)
+            continue;
+        if (t.n)
+            text_add(&t, ";");
+        else
+            text_printf(&t, "At one place (%s):", grid_shared_glyph(p));
+        add_company(&t, g, i);
+    }
+    if (t.n)
+        page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+}
+
+/* "5 -> 5a, 5b": all arrows from one mark. */
+static void add_arrows_from(struct text *t, const struct grid_plane *g, size_t from)
+{
+    bool first = true;
+    for (size_t i = 0; i < g->grid->marks.n; i++) {
+        if (g->grid->marks.at[i].arrow_from != (int)from)
+            continue;
+        if (first)
+            text_printf(t, "%s %s %s %s", t->n ? ";" : "Arrows:", label_of(g, from),
+                        g->page->ascii ? "->" : "→", label_of(g, i));
+        else
+            text_printf(t, ", %s", label_of(g, i));
+        first = false;
+    }
 }
 
 static void write_arrows(struct page *p, const struct grid_plane *g)
 {
     struct text t;
     text_init(&t, p->arena);
-    for (size_t i = 0; i < g->grid->marks.n; i++) {
-        int from = g->grid->marks.at[i].arrow_from;
-        if (from >= 0)
-            text_printf(&t, "%s %s %s %s", t.n ? ";" : "Arrows:", label_of(g, (size_t)from),
-                        p->ascii ? "->" : "→", label_of(g, i));
-    }
+    for (size_t from = 0; from < g->grid->marks.n; from++)
+        add_arrows_from(&t, g, from);
     if (t.n)
         page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+}
+
+static bool is_crowded(const struct grid_plane *g, size_t i)
+{
+    return g->spots[i].placed && !g->spots[g->spots[i].first].labelled;
 }
 
 static bool is_clamped(const struct grid_plane *g, size_t i)
@@ -133,10 +164,9 @@ static void write_remarks(struct page *p, const struct grid_plane *g)
     size_t before = p->out->n;
     page_blank(p);
     size_t start = p->out->n;
-    for (size_t i = 0; i < g->grid->marks.n; i++)
-        if (g->spots[i].placed && g->spots[i].first == i && g->spots[i].company > 1)
-            write_company(p, g, i);
+    write_company(p, g);
     write_arrows(p, g);
+    write_list(p, g, "In the picture without a label, for want of room:", is_crowded);
     write_list(p, g, "Beyond the axes, drawn at the edge of the picture:", is_clamped);
     write_list(p, g, "Not in the picture, for it never happens:", is_never);
     write_list(p, g, "Not in the picture, for it does no damage:", is_harmless);

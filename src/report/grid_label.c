@@ -1,7 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Labels beside the marks. A label may cover thin lines, nothing else; it never
- * touches another label or another mark, so that it cannot be read as that one's.
- * A label that finds no place stands in the key alone. Owns nothing. */
+/* Labels beside the marks; marks of one cell have a joined one, "6,7". A label covers
+ * nothing but thin dots. Beside it stands a blank, the edge or its own mark, so that
+ * it never reads as part of a line, an arrow or another label; where it is not beside
+ * its own mark, it does not touch any other one. A label that finds no place stands
+ * in the key alone. Owns nothing. */
 #include <string.h>
 
 #include "base/utf8.h"
@@ -24,15 +26,17 @@ static int longest_label(const struct grid_plane *g)
     return g->columns / 4 > 12 ? g->columns / 4 : 12;
 }
 
-/* What stands before and behind a label: on the first round nothing but thin lines
- * may, on the second anything but another label or mark. */
-static bool is_apart(const struct grid_plane *g, const struct grid_spot *s, int x, int y,
-                     bool strict)
+static bool is_own(const struct grid_spot *s, int x, int y)
+{
+    return x == s->x && y == s->y;
+}
+
+/* Before and behind a label: its mark, or what a blank may replace. To the left the
+ * axis is too near; to the right there is a blank beyond the edge. */
+static bool is_gap(const struct grid_plane *g, const struct grid_spot *s, int x, int y)
 {
     const struct grid_cell *c = grid_cell_at(g, x, y);
-    if (!c || (x == s->x && y == s->y))
-        return true;
-    return c->layer < (strict ? LAYER_LINE : LAYER_LABEL);
+    return c ? is_own(s, x, y) || c->layer <= LAYER_GAP : x >= g->columns;
 }
 
 static bool is_free(const struct grid_plane *g, int x, int y)
@@ -41,18 +45,32 @@ static bool is_free(const struct grid_plane *g, int x, int y)
     return c && c->layer <= LAYER_RISK;
 }
 
-static bool fits(const struct grid_plane *g, const struct grid_spot *s, int x, int y, int n,
-                 bool strict)
+/* A mark of other ones within a cell of the n cells from x. */
+static bool is_near_others(const struct grid_plane *g, const struct grid_spot *s, int x, int y,
+                           int n)
+{
+    for (int row = y - 1; row <= y + 1; row++)
+        for (int i = x - 1; i <= x + n; i++) {
+            const struct grid_cell *c = grid_cell_at(g, i, row);
+            if (c && c->layer == LAYER_MARK && !is_own(s, i, row))
+                return true;
+        }
+    return false;
+}
+
+static bool fits(const struct grid_plane *g, const struct grid_spot *s, int x, int y, int n)
 {
     for (int i = 0; i < n; i++)
         if (!is_free(g, x + i, y))
             return false;
-    return is_apart(g, s, x - 1, y, strict) && is_apart(g, s, x + n, y, strict);
+    return is_gap(g, s, x - 1, y) && is_gap(g, s, x + n, y)
+        && (y == s->y || !is_near_others(g, s, x, y, n));
 }
 
 /* A cell takes one character with what combines with it; a wide one takes two. */
 static void put_label(struct grid_plane *g, const char *s, int x, int y)
 {
+    grid_put(g, x - 1, y, " ", LAYER_GAP);
     while (*s) {
         int columns = 1;
         size_t n = utf8_prefix(s, 1);
@@ -67,16 +85,18 @@ static void put_label(struct grid_plane *g, const char *s, int x, int y)
         x += columns;
         s += n;
     }
+    grid_put(g, x, y, " ", LAYER_GAP);
 }
 
-static bool try_places(struct grid_plane *g, const struct grid_spot *s, const char *label,
-                       bool strict)
+static bool try_places(struct grid_plane *g, const struct grid_spot *s, const char *label)
 {
     int n = (int)utf8_columns(label);
+    if (n == 0 || n > longest_label(g))
+        return false;
     for (size_t k = 0; k < sizeof places / sizeof *places; k++) {
         int x = s->x + places[k].half_lengths * n / 2 + places[k].cells;
         int y = s->y + places[k].rows;
-        if (!fits(g, s, x, y, n, strict))
+        if (!fits(g, s, x, y, n))
             continue;
         put_label(g, label, x, y);
         return true;
@@ -84,19 +104,34 @@ static bool try_places(struct grid_plane *g, const struct grid_spot *s, const ch
     return false;
 }
 
+/* The first n labels of a cell, and a sign that there are more: "6,7..". */
+static const char *joined_label(const struct grid_plane *g, size_t first, size_t n)
+{
+    struct text t;
+    text_init(&t, g->page->arena);
+    size_t left = n;
+    for (size_t i = first; left > 0; i++) {
+        if (!g->spots[i].placed || g->spots[i].first != first)
+            continue;
+        text_printf(&t, "%s%s", t.n ? "," : "", page_clean(g->page, g->grid->marks.at[i].label));
+        left--;
+    }
+    if (n < g->spots[first].company)
+        text_add(&t, "..");
+    return text_str(&t);
+}
+
+/* As many labels of the cell as find a place. */
 static void place_label(struct grid_plane *g, size_t i)
 {
-    const char *label = page_clean(g->page, g->grid->marks.at[i].label);
-    size_t n = utf8_columns(label);
-    if (n == 0 || n > (size_t)longest_label(g))
-        return;
-    if (!try_places(g, &g->spots[i], label, true))
-        try_places(g, &g->spots[i], label, false);
+    struct grid_spot *s = &g->spots[i];
+    for (size_t n = s->company; n > 0 && !s->labelled; n--)
+        s->labelled = try_places(g, s, joined_label(g, i, n));
 }
 
 void grid_draw_labels(struct grid_plane *g)
 {
     for (size_t i = 0; i < g->grid->marks.n; i++)
-        if (g->spots[i].placed)
+        if (g->spots[i].placed && g->spots[i].first == i)
             place_label(g, i);
 }

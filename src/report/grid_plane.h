@@ -3,20 +3,25 @@
  * frequency upwards, in cells of a page.
  *
  * A cell is twice as high as wide on most terminals and in print, so a decade has
- * about half as many rows as columns and lines of equal risk fall at 45 degrees.
- * Decade boundaries lie on whole cells: column k * decade_columns is damage
- * 10^(damage_low + k), row k * decade_rows is frequency 10^(frequency_high - k).
- * Invariant: 3 to 12 decades on each axis; a cell is drawn by the layer that
- * matters most there. */
+ * half as many rows as columns and lines of equal risk fall at 45 degrees; a picture
+ * that is narrow for its page is stretched to at most 1.4 times that. From the top to
+ * the bottom of the axis it has at most 32 rows on a page of up to 120 columns, one
+ * more for each 10 columns more. Decade boundaries lie on whole cells: column
+ * k * decade_columns is damage 10^(damage_low + k), row k * decade_rows is frequency
+ * 10^(frequency_high - k).
+ * Invariant: 2 to 12 decades on each axis; no mark in the outermost rows and columns
+ * of an axis with fewer than 12; a cell is drawn by the layer that matters most
+ * there. */
 #ifndef REPORT_GRID_PLANE_H
 #define REPORT_GRID_PLANE_H
 
 #include "report/page.h"
 
-enum { GRID_LEAST_DECADES = 3, GRID_MOST_DECADES = 12 };
+enum { GRID_LEAST_DECADES = 2, GRID_MOST_DECADES = 12 };
 
-enum grid_layer { LAYER_NONE, LAYER_RISK, LAYER_LINE, LAYER_ARROW, LAYER_HEAD, LAYER_LABEL,
-                  LAYER_MARK };
+/* LAYER_GAP: the blank that keeps a label from what is beside it. */
+enum grid_layer { LAYER_NONE, LAYER_RISK, LAYER_GAP, LAYER_LINE, LAYER_ARROW, LAYER_HEAD,
+                  LAYER_LABEL, LAYER_MARK };
 
 struct grid_cell {
     const char *glyph; /* clean; "" for the second half of a wide character */
@@ -30,6 +35,7 @@ struct grid_spot {
     int x, y;
     size_t company; /* marks in this cell, itself included */
     size_t first;   /* the first mark in this cell */
+    bool labelled;  /* of the first mark: the picture has a label for this cell */
 };
 
 struct grid_plane {
@@ -44,15 +50,24 @@ struct grid_plane {
     size_t n_placed;
 };
 
-/* Chooses the decades of both axes so that they hold all marks with a margin. */
+/* Chooses the fewest decades of both axes that hold all marks. */
 void grid_plane_range(struct grid_plane *g);
 /* Chooses the size of a decade for `columns` columns, and finds the marks' cells. */
 void grid_plane_size(struct grid_plane *g, int columns);
-/* Draws all layers; grid_draw.c and grid_label.c. */
+/* Adds a decade where a mark stands at the edge; true when it did, and then the size
+ * must be chosen anew. */
+bool grid_plane_widen(struct grid_plane *g);
+/* Finds the marks that share a cell, and makes the cells; once the size is final. */
+void grid_plane_open(struct grid_plane *g);
+
+/* Draw all layers, in this order; grid_draw.c, grid_arrow.c and grid_label.c. */
 void grid_draw_lines(struct grid_plane *g);
-void grid_draw_arrows(struct grid_plane *g);
 void grid_draw_marks(struct grid_plane *g);
+void grid_draw_arrows(struct grid_plane *g);
 void grid_draw_labels(struct grid_plane *g);
+
+/* The sign of a cell that several marks share. */
+const char *grid_shared_glyph(const struct page *p);
 
 /* The cell, or NULL outside the plane. */
 struct grid_cell *grid_cell_at(const struct grid_plane *g, int x, int y);

@@ -244,11 +244,15 @@ static void write_risks(const struct frame *f, struct page *p)
 
 static void write_picture(struct page *p, struct grid_plane *g)
 {
-    struct frame f = {.plane = g};
-    measure(&f);
+    struct frame f;
+    do {
+        f = (struct frame){.plane = g};
+        measure(&f);
+    } while (grid_plane_widen(g));
+    grid_plane_open(g);
     grid_draw_lines(g);
-    grid_draw_arrows(g);
     grid_draw_marks(g);
+    grid_draw_arrows(g);
     grid_draw_labels(g);
     page_paragraph(p, "frequency, per year", 0, INK_PLAIN);
     for (int y = 0; y < g->rows; y++)

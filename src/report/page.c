@@ -72,6 +72,16 @@ void line_end(struct line *l)
     *l = line_begin(l->page);
 }
 
+/* Bytes of a part of a word that is wider than the line: up to a stroke, point or plus in
+ * its last half, so that paths and names of figures break between their steps. */
+static size_t part_of_word(const char *s, size_t n)
+{
+    for (size_t i = n; i > n / 2; i--)
+        if (strchr("/.+", s[i - 1]))
+            return i;
+    return n;
+}
+
 /* Bytes of the longest run of whole words that fits; of a part of the first word
  * when that is wider than the line. */
 static size_t fitting(const char *s, size_t width)
@@ -83,7 +93,7 @@ static size_t fitting(const char *s, size_t width)
         i--;
     if (i > 0)
         return i;
-    return n > 0 ? n : strlen(s);
+    return n > 0 ? part_of_word(s, n) : strlen(s);
 }
 
 struct lines page_wrap(const struct page *p, const char *s, size_t width)

@@ -6,7 +6,9 @@
  * Invariant: no store is handed out before its file is known to be a register of a
  * format that this version reads, with exactly the enduring tables it makes. */
 #include <errno.h>
+#include <limits.h>
 #include <sodium.h>
+#include <stdlib.h>
 #include <string.h>
 #include <sys/stat.h>
 #include <unistd.h>
@@ -37,7 +39,7 @@ static ohmen_status harden(const struct base *b, ohmen_error *e)
     return query_exec(b,
                       "PRAGMA foreign_keys = ON; PRAGMA recursive_triggers = ON;"
                       "PRAGMA cell_size_check = ON; PRAGMA temp_store = MEMORY;"
-                      "PRAGMA synchronous = FULL",
+                      "PRAGMA cache_size = -65536; PRAGMA synchronous = FULL",
                       e);
 }
 
@@ -93,8 +95,8 @@ ohmen_status store_new_base(struct arena *a, const char *vfs, const char *path, 
                             ohmen_error *e)
 {
     struct base b = {.name = path};
-    ohmen_status status = open_database(
-        a, uri_of(a, path, ""), SQLITE_OPEN_READWRITE | SQLITE_OPEN_CREATE, vfs, &b, e);
+    ohmen_status status = open_database(a, uri_of(a, path, ""),
+                                        SQLITE_OPEN_READWRITE | SQLITE_OPEN_CREATE, vfs, &b, e);
     if (status == OHMEN_OK)
         *out = b;
     return status;
@@ -121,7 +123,7 @@ static ohmen_status create(struct arena *a, const char *vfs, const char *path, o
     struct stat st;
     if (lstat(path, &st) == 0)
         return error_set(e, OHMEN_INPUT, "cannot make %s: a file of this name exists", path);
-    ohmen_status status = place_check(a, path, e);
+    ohmen_status status = place_check(a, path, path, e);
     if (status != OHMEN_OK)
         return status;
     const char *part = place_part(a, path);
@@ -195,7 +197,7 @@ static ohmen_status try_open(struct store *s, const char *parameters, int flags,
 {
     struct arena *a = arena_child(s->arena);
     ohmen_status status =
-        open_database(a, uri_of(a, s->base.name, parameters), flags, s->vfs, &s->base, e);
+        open_database(a, uri_of(a, s->path, parameters), flags, s->vfs, &s->base, e);
     if (status == OHMEN_OK)
         status = first_read(s, e);
     if (status == OHMEN_OK)
@@ -224,7 +226,7 @@ static ohmen_status open_as_guest(struct store *s, ohmen_error *e)
         return status;
     if (status != OHMEN_IO)
         return error_set(e, status, "%s", first.text);
-    if (has_pages_outside(s->arena, s->base.name))
+    if (has_pages_outside(s->arena, s->path))
         return error_set(e, OHMEN_IO,
                          "%s was not closed properly and its folder cannot be written; copy it "
                          "together with %s-wal into a folder of yours",
@@ -235,17 +237,16 @@ static ohmen_status open_as_guest(struct store *s, ohmen_error *e)
 static ohmen_status open_to_read(struct store *s, ohmen_error *e)
 {
     struct arena *a = arena_child(s->arena);
-    const char *folder = place_folder(a, s->base.name);
-    bool owner = access(s->base.name, W_OK) == 0 && access(folder, W_OK) == 0;
+    const char *folder = place_folder(a, s->path);
+    bool owner = access(s->path, W_OK) == 0 && access(folder, W_OK) == 0;
     arena_free(a);
     return owner ? open_as_owner(s, e) : open_as_guest(s, e);
 }
 
 static ohmen_status open_to_write(struct store *s, ohmen_error *e)
 {
-    ohmen_status status =
-        open_database(s->arena, uri_of(s->arena, s->base.name, "?mode=rw"), SQLITE_OPEN_READWRITE,
-                      s->vfs, &s->base, e);
+    ohmen_status status = open_database(s->arena, uri_of(s->arena, s->path, "?mode=rw"),
+                                        SQLITE_OPEN_READWRITE, s->vfs, &s->base, e);
     if (status == OHMEN_OK)
         status = first_read(s, e);
     if (status == OHMEN_OK && sqlite3_db_readonly(s->base.db, "main") == 1)
@@ -253,12 +254,15 @@ static ohmen_status open_to_write(struct store *s, ohmen_error *e)
     return status;
 }
 
-ohmen_status store_open_on(const char *vfs, struct arena *a, const char *path,
-                           enum store_mode mode, struct store **out, ohmen_error *e)
+ohmen_status store_open_on(const char *vfs, struct arena *a, const char *path, enum store_mode mode,
+                           struct store **out, ohmen_error *e)
 {
+    char real[PATH_MAX];
     ohmen_status status = look_at(path, mode, e);
+    if (status == OHMEN_OK && !realpath(path, real))
+        status = error_set(e, OHMEN_IO, "cannot open %s: %s", path, error_system(errno));
     if (status == OHMEN_OK)
-        status = place_check(a, path, e);
+        status = place_check(a, real, path, e);
     if (status == OHMEN_OK && sodium_init() < 0)
         status = error_set(e, OHMEN_INTERNAL, "the hash function does not start");
     if (status != OHMEN_OK)
@@ -267,6 +271,7 @@ ohmen_status store_open_on(const char *vfs, struct arena *a, const char *path,
     struct store *s = NEW(own, struct store);
     s->arena = own;
     s->base.name = arena_str(own, path);
+    s->path = arena_str(own, real);
     s->mode = mode;
     s->vfs = vfs;
     status = mode == STORE_WRITE ? open_to_write(s, e) : open_to_read(s, e);
@@ -279,8 +284,8 @@ ohmen_status store_open_on(const char *vfs, struct arena *a, const char *path,
     return status;
 }
 
-ohmen_status store_open(struct arena *a, const char *path, enum store_mode mode,
-                        struct store **out, ohmen_error *e)
+ohmen_status store_open(struct arena *a, const char *path, enum store_mode mode, struct store **out,
+                        ohmen_error *e)
 {
     return store_open_on(NULL, a, path, mode, out, e);
 }
@@ -291,7 +296,6 @@ ohmen_status store_read_begin(struct store *s, ohmen_error *e)
 {
     return query_exec(&s->base, "BEGIN", e);
 }
-
 
 ohmen_status store_write_begin(struct store *s, ohmen_error *e)
 {

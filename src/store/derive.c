@@ -249,17 +249,11 @@ static enum walk enter(void *ctx, const struct visit *v)
     if (!s || d->status != OHMEN_OK)
         return WALK_PAST;
     switch (s->shape) {
-    case SPOT_COLUMN:
-        set_column(d, top->row, s->column, v->node);
-        return WALK_PAST;
+    case SPOT_COLUMN: set_column(d, top->row, s->column, v->node); return WALK_PAST;
     case SPOT_GROUP:
-    case SPOT_ROWS:
-        return go_into(d, s->below, top->row, false);
-    case SPOT_ROW:
-        return enter_row(d, s, v, top->row);
-    default:
-        write_content(d, s, v, top->row);
-        return WALK_PAST;
+    case SPOT_ROWS: return go_into(d, s->below, top->row, false);
+    case SPOT_ROW: return enter_row(d, s, v, top->row);
+    default: write_content(d, s, v, top->row); return WALK_PAST;
     }
 }
 
@@ -310,8 +304,7 @@ struct derivation *derive_begin(struct arena *a, const struct base *to, struct p
     d->insert = NEW_ARRAY(a, p->relations.n, struct query);
     d->remove = NEW_ARRAY(a, p->relations.n, struct query);
     d->reference = query_new(to, "INSERT OR IGNORE INTO reference VALUES(?1, ?2, ?3, ?4, ?5)", e);
-    d->unreference =
-        query_new(to, "DELETE FROM reference WHERE kind = ?1 AND \"from\" = ?2", e);
+    d->unreference = query_new(to, "DELETE FROM reference WHERE kind = ?1 AND \"from\" = ?2", e);
     d->status = d->reference.status != OHMEN_OK ? d->reference.status : d->unreference.status;
     return d;
 }

@@ -28,8 +28,8 @@ static void read_entry(struct query *q, struct arena *a, struct store_entry *out
     copy_hash(out->hash, found.hash);
 }
 
-ohmen_status store_entries(struct store *s, uint64_t first, uint64_t last, struct store_entries *out,
-                           ohmen_error *e)
+ohmen_status store_entries(struct store *s, uint64_t first, uint64_t last,
+                           struct store_entries *out, ohmen_error *e)
 {
     struct store_entries found = {0};
     struct query q = query_new(&s->base,
@@ -68,11 +68,11 @@ ohmen_status store_versions(struct store *s, const char *id, struct store_versio
     if (status != OHMEN_OK)
         return status;
     struct query bodies = query_new(&s->base, STATE_BODY_SQL, e);
-    struct query q = query_new(
-        &s->base,
-        id ? "SELECT seq, kind, id, body FROM version WHERE id = ?1 ORDER BY seq, kind"
-           : "SELECT seq, kind, id, body FROM version ORDER BY seq, kind, id",
-        e);
+    struct query q =
+        query_new(&s->base,
+                  id ? "SELECT seq, kind, id, body FROM version WHERE id = ?1 ORDER BY seq, kind"
+                     : "SELECT seq, kind, id, body FROM version ORDER BY seq, kind, id",
+                  e);
     if (id)
         query_bind_text(&q, 1, id);
     while (bodies.status == OHMEN_OK && query_row(&q))

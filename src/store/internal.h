@@ -16,6 +16,7 @@ struct projection;
 struct store {
     struct arena *arena;
     struct base base;
+    const char *path; /* with all links followed: the side files stand beside it */
     enum store_mode mode;
     const char *vfs;               /* name of SQLite's file system; NULL: the usual one */
     struct projection *projection; /* made when first needed */
@@ -26,8 +27,8 @@ struct store {
 /* store_create and store_open on an SQLite file system by its name. */
 ohmen_status store_create_on(const char *vfs, const struct mem *mem, const char *path,
                              ohmen_error *e);
-ohmen_status store_open_on(const char *vfs, struct arena *a, const char *path,
-                           enum store_mode mode, struct store **out, ohmen_error *e);
+ohmen_status store_open_on(const char *vfs, struct arena *a, const char *path, enum store_mode mode,
+                           struct store **out, ohmen_error *e);
 
 /* A stretch in which all reads see one state of the file. */
 ohmen_status store_read_begin(struct store *s, ohmen_error *e);
@@ -57,8 +58,11 @@ const char *place_folder(struct arena *a, const char *path);
 /* Is a file system of this type shared over a network ("nfs4", "fuse.sshfs")? There
  * SQLite's locks and shared memory do not hold. */
 bool place_is_network(const char *type);
-/* Refuses a path whose folder is on such a file system. */
-ohmen_status place_check(struct arena *a, const char *path, ohmen_error *e);
+/* Refuses a path whose folder is on such a file system; `name` is for the message. */
+ohmen_status place_check(struct arena *a, const char *path, const char *name, ohmen_error *e);
+/* What place_publish does where the file system has no links: claims the name with an
+ * empty file and renames over it. 0 or the errno. */
+int place_rename(const char *part, const char *path);
 /* Gives a finished file its name, durably; a name that is taken is refused. */
 ohmen_status place_publish(struct arena *a, const char *part, const char *path, ohmen_error *e);
 /* A free name beside `path` for a file that is not finished, which is removed under
@@ -95,7 +99,7 @@ ohmen_status state_body(struct query *bodies, struct arena *a, const char *hash,
 /* SELECT of the observations that are not withdrawn as of ?1; columns in the order of
  * struct store_observation. */
 #define STATE_OBSERVATIONS_SQL                                                                     \
-    "SELECT seq, number, ident, day, what, subject, result, note, count FROM observation o "      \
+    "SELECT seq, number, ident, day, what, subject, result, note, count FROM observation o "       \
     "WHERE seq <= ?1 AND NOT EXISTS (SELECT 1 FROM withdrawal w "                                  \
     "WHERE w.observation = o.number AND w.seq <= ?1) ORDER BY day, what, subject, ident"
 

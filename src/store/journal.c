@@ -133,9 +133,9 @@ static void record_row(struct hashing *h, struct query *q)
 }
 
 /* Feeds the rows of one table that belong to an entry; returns how many. */
-static int64_t feed_rows(const struct base *b, struct hashing *h, const char *sql,
-                         int64_t seq, void (*row)(struct hashing *, struct query *),
-                         ohmen_status *status, ohmen_error *e)
+static int64_t feed_rows(const struct base *b, struct hashing *h, const char *sql, int64_t seq,
+                         void (*row)(struct hashing *, struct query *), ohmen_status *status,
+                         ohmen_error *e)
 {
     int64_t n = 0;
     if (*status != OHMEN_OK)
@@ -156,8 +156,8 @@ ohmen_status journal_digest(const struct base *b, struct arena *a, int64_t seq,
     struct hashing h;
     hashing_begin(&h, a, "ohmen digest 1");
     counted->changes =
-        feed_rows(b, &h, "SELECT kind, id, body FROM version WHERE seq = ?1 ORDER BY kind, id",
-                  seq, version_row, &status, e);
+        feed_rows(b, &h, "SELECT kind, id, body FROM version WHERE seq = ?1 ORDER BY kind, id", seq,
+                  version_row, &status, e);
     counted->observations =
         feed_rows(b, &h,
                   "SELECT number, ident, day, what, subject, result, count, note FROM observation "

@@ -43,7 +43,7 @@ struct journal_entry {
 void journal_entry_hash(struct arena *a, const struct journal_entry *entry,
                         char hash[STORE_HASH_TEXT]);
 #define JOURNAL_ENTRY_COLUMNS                                                                      \
-    "seq, utc, author, reason, command, tool, changes, observations, withdrawals, records, "      \
+    "seq, utc, author, reason, command, tool, changes, observations, withdrawals, records, "       \
     "digest, prev, hash"
 /* Reads those columns of the present row. */
 void journal_entry_read(struct query *q, struct arena *a, struct journal_entry *out);

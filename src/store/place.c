@@ -16,11 +16,28 @@
 
 bool place_is_network(const char *type)
 {
-    static const char *const shared[] = {
-        "nfs",           "nfs4", "cifs", "smb",      "smb3", "smbfs",        "ncpfs",
-        "afs",           "9p",   "ceph", "lustre",   "gfs2", "ocfs2",        "coda",
-        "fuse.sshfs",    "davfs", "fuse.davfs2", "fuse.rclone", "fuse.glusterfs", "fuse.s3fs",
-        "fuse.curlftpfs", NULL};
+    static const char *const shared[] = {"nfs",
+                                         "nfs4",
+                                         "cifs",
+                                         "smb",
+                                         "smb3",
+                                         "smbfs",
+                                         "ncpfs",
+                                         "afs",
+                                         "9p",
+                                         "ceph",
+                                         "lustre",
+                                         "gfs2",
+                                         "ocfs2",
+                                         "coda",
+                                         "fuse.sshfs",
+                                         "davfs",
+                                         "fuse.davfs2",
+                                         "fuse.rclone",
+                                         "fuse.glusterfs",
+                                         "fuse.s3fs",
+                                         "fuse.curlftpfs",
+                                         NULL};
     for (size_t i = 0; shared[i]; i++)
         if (text_equal(shared[i], type))
             return true;
@@ -74,11 +91,10 @@ static const char *type_of_place(struct arena *a, const char *path)
         return NULL;
     if (file_read(a, "/proc/self/mountinfo", MOUNTS_BYTES, &mounts, &n, NULL) != OHMEN_OK)
         return NULL;
-    return type_of_device(a, mounts,
-                          arena_printf(a, "%u:%u", major(st.st_dev), minor(st.st_dev)));
+    return type_of_device(a, mounts, arena_printf(a, "%u:%u", major(st.st_dev), minor(st.st_dev)));
 }
 
-ohmen_status place_check(struct arena *a, const char *path, ohmen_error *e)
+ohmen_status place_check(struct arena *a, const char *path, const char *name, ohmen_error *e)
 {
     struct arena *scratch = arena_child(a);
     const char *type = type_of_place(scratch, path);
@@ -87,7 +103,7 @@ ohmen_status place_check(struct arena *a, const char *path, ohmen_error *e)
         status = error_set(e, OHMEN_IO,
                            "%s lies in a folder that is shared over a network (%s), where a "
                            "register is not safe; keep it on a local disk",
-                           path, type);
+                           name, type);
     arena_free(scratch);
     return status;
 }
@@ -105,16 +121,32 @@ static ohmen_status sync_folder(struct arena *a, const char *path, ohmen_error *
     return OHMEN_OK;
 }
 
-/* A link never replaces a file, which a rename would. */
+int place_rename(const char *part, const char *path)
+{
+    int fd = open(path, O_WRONLY | O_CREAT | O_EXCL | O_CLOEXEC, 0666);
+    if (fd < 0)
+        return errno;
+    close(fd); /* of the claim, which is no register and on which SQLite has no locks */
+    return rename(part, path) == 0 ? 0 : errno;
+}
+
+/* A link never replaces a file, which a rename would. 0 or the errno. */
+static int give_name(const char *part, const char *path)
+{
+    if (link(part, path) == 0)
+        return 0;
+    bool no_links = errno == EPERM || errno == ENOSYS || errno == EOPNOTSUPP || errno == EMLINK;
+    return no_links ? place_rename(part, path) : errno;
+}
+
 ohmen_status place_publish(struct arena *a, const char *part, const char *path, ohmen_error *e)
 {
-    ohmen_status status = OHMEN_OK;
-    if (link(part, path) != 0) {
-        int why = errno;
-        status = error_set(e, why == EEXIST ? OHMEN_INPUT : OHMEN_IO, "cannot make %s: %s", path,
-                           why == EEXIST ? "a file of this name exists" : error_system(why));
-    }
-    return status == OHMEN_OK ? sync_folder(a, path, e) : status;
+    int why = give_name(part, path);
+    if (why == EEXIST)
+        return error_set(e, OHMEN_INPUT, "cannot make %s: a file of this name exists", path);
+    if (why)
+        return error_set(e, OHMEN_IO, "cannot make %s: %s", path, error_system(why));
+    return sync_folder(a, path, e);
 }
 
 static void remove_part(void *object)

@@ -8,11 +8,16 @@
 
 /* Made names that a better one is known for. */
 static const char *const better_names[][2] = {
-    {"hazard_response", "response_row"}, {"hazard_outcomes", "outcome"},
-    {"hazard_branch", "branch"},         {"outcome_damage", "damage"},
-    {"outcome_interruptions", "interruption"}, {"outcome_harm", "harm"},
-    {"rate_exposure", "exposure"},       {"scheme_works", "scheme_member"},
-    {"scheme_trips_on", "scheme_trip_member"}, {"decision_step", "step"},
+    {"hazard_response", "response_row"},
+    {"hazard_outcomes", "outcome"},
+    {"hazard_branch", "branch"},
+    {"outcome_damage", "damage"},
+    {"outcome_interruptions", "interruption"},
+    {"outcome_harm", "harm"},
+    {"rate_exposure", "exposure"},
+    {"scheme_works", "scheme_member"},
+    {"scheme_trips_on", "scheme_trip_member"},
+    {"decision_step", "step"},
     {"decision_chance_branch", "chance_branch"},
 };
 
@@ -21,7 +26,11 @@ struct making {
     struct projection *p;
     enum kind kind;
     /* Maps that may contain themselves, known by their table, with their relation. */
-    ARRAY(struct known { const struct table *table; struct spot *row; }) known;
+    ARRAY(struct known {
+        const struct table *table;
+        struct spot *row;
+    })
+    known;
 };
 
 static const char *snake(struct arena *a, const char *s)
@@ -54,8 +63,8 @@ static struct relation *add_relation(struct making *m, const char *name, size_t 
                                      const char *help)
 {
     struct relation *r = NEW(m->a, struct relation);
-    *r = (struct relation){.name = name, .help = help, .n_key = n_key, .kind = m->kind,
-                           .index = m->p->relations.n};
+    *r = (struct relation){
+        .name = name, .help = help, .n_key = n_key, .kind = m->kind, .index = m->p->relations.n};
     *array_push(m->a, &m->p->relations) = r;
     return r;
 }
@@ -87,10 +96,8 @@ static bool is_scalar(const struct field *f)
     case FIELD_DATE:
     case FIELD_WHEN:
     case FIELD_UNIT:
-    case FIELD_QUANTITY:
-        return true;
-    default:
-        return false;
+    case FIELD_QUANTITY: return true;
+    default: return false;
     }
 }
 
@@ -110,8 +117,8 @@ static const struct table *table_below(const struct field *f)
 enum { TABLES_DEEP = 16 };
 
 /* Does `wanted` stand somewhere inside t? The tables on the way are in `above`. */
-static bool contains(const struct table *t, const struct table *wanted,
-                     const struct table **above, size_t depth)
+static bool contains(const struct table *t, const struct table *wanted, const struct table **above,
+                     size_t depth)
 {
     for (size_t i = 0; i < depth; i++)
         if (above[i] == t)

@@ -21,8 +21,8 @@
 
 struct column {
     const char *name;
-    bool whole;       /* INTEGER, else TEXT */
-    bool needed;      /* NOT NULL */
+    bool whole;  /* INTEGER, else TEXT */
+    bool needed; /* NOT NULL */
     const char *help;
 };
 
@@ -31,8 +31,8 @@ struct relation {
     const char *help;
     ARRAY(struct column) columns; /* the first n_key are the primary key */
     size_t n_key;
-    size_t index;       /* in the projection */
-    enum kind kind;     /* whose objects make it */
+    size_t index;   /* in the projection */
+    enum kind kind; /* whose objects make it */
 };
 
 /* Where a field goes when it is met at one place of an object. */

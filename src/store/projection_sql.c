@@ -33,8 +33,7 @@ const struct fixed_relation projection_fixed[] = {
      "    PRIMARY KEY(\"at\", \"kind\", \"id\")\n"
      ") STRICT, WITHOUT ROWID",
      3},
-    {"index", "reference_to",
-     "CREATE INDEX \"reference_to\" ON \"reference\"(\"to\")", 0},
+    {"index", "reference_to", "CREATE INDEX \"reference_to\" ON \"reference\"(\"to\")", 0},
 };
 const size_t projection_n_fixed = sizeof projection_fixed / sizeof projection_fixed[0];
 

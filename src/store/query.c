@@ -19,19 +19,15 @@ static ohmen_status damaged(const struct base *b, ohmen_error *e)
 ohmen_status query_error(const struct base *b, int code, ohmen_error *e)
 {
     switch (code & 0xff) {
-    case SQLITE_NOMEM:
-        return error_set(e, OHMEN_MEMORY, "out of memory while using %s", b->name);
+    case SQLITE_NOMEM: return error_set(e, OHMEN_MEMORY, "out of memory while using %s", b->name);
     case SQLITE_BUSY:
-    case SQLITE_LOCKED:
-        return busy(b, e);
+    case SQLITE_LOCKED: return busy(b, e);
     case SQLITE_NOTADB:
         return error_set(e, OHMEN_REGISTER, "%s is no register: it is not an SQLite database",
                          b->name);
     case SQLITE_CORRUPT:
-    case SQLITE_FORMAT:
-        return damaged(b, e);
-    case SQLITE_FULL:
-        return error_set(e, OHMEN_IO, "there is no room left to write %s", b->name);
+    case SQLITE_FORMAT: return damaged(b, e);
+    case SQLITE_FULL: return error_set(e, OHMEN_IO, "there is no room left to write %s", b->name);
     case SQLITE_READONLY:
     case SQLITE_PERM:
         return error_set(e, OHMEN_IO, "%s cannot be written: %s", b->name, sqlite3_errmsg(b->db));
@@ -42,8 +38,7 @@ ohmen_status query_error(const struct base *b, int code, ohmen_error *e)
                          sqlite3_errmsg(b->db));
     case SQLITE_TOOBIG:
         return error_set(e, OHMEN_INPUT, "a text is too long to be stored in %s", b->name);
-    default:
-        return error_set(e, OHMEN_INTERNAL, "%s: %s", b->name, sqlite3_errmsg(b->db));
+    default: return error_set(e, OHMEN_INTERNAL, "%s: %s", b->name, sqlite3_errmsg(b->db));
     }
 }
 

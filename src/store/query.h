@@ -39,7 +39,8 @@ struct query {
 /* Prepares one statement. */
 struct query query_new(const struct base *b, const char *sql, ohmen_error *e);
 
-void query_bind_text(struct query *q, int at, const char *s); /* s outlives the step; NULL is NULL */
+void query_bind_text(struct query *q, int at,
+                     const char *s); /* s outlives the step; NULL is NULL */
 void query_bind_int(struct query *q, int at, int64_t n);
 void query_bind_null(struct query *q, int at);
 

@@ -178,26 +178,40 @@ ohmen_status rebuild_fill(struct store *s, const struct base *to, ohmen_error *e
 
 /* --- the layout --- */
 
-static ohmen_status has_object(struct query *q, const char *name, const char *sql, bool *same)
+/* SQL without its comments: another wording of a help text is no other layout. */
+static const char *bare(struct arena *a, const char *sql)
+{
+    struct text t;
+    text_init(&t, a);
+    while (*sql) {
+        size_t n = strcspn(sql, "\n"), keep = n;
+        for (size_t i = 0; i + 1 < n && keep == n; i++)
+            if (sql[i] == '-' && sql[i + 1] == '-')
+                keep = i;
+        text_addn(&t, sql, keep);
+        sql += n + (sql[n] == '\n');
+    }
+    return text_str(&t);
+}
+
+static bool has_layout(struct query *q, struct arena *a, const char *name, const char *sql)
 {
     query_bind_text(q, 1, name);
-    query_bind_text(q, 2, sql);
-    *same = query_row(q);
+    bool same = query_row(q) && text_equal(bare(a, query_name(q, 0)), bare(a, sql));
     query_reset(q);
-    return q->status;
+    return same;
 }
 
 ohmen_status rebuild_layout_is_ours(struct store *s, bool *ours, ohmen_error *e)
 {
     struct projection *p = store_projection(s);
     struct arena *a = arena_child(s->arena);
-    struct query q =
-        query_new(&s->base, "SELECT 1 FROM sqlite_schema WHERE name = ?1 AND sql = ?2", e);
+    struct query q = query_new(&s->base, "SELECT sql FROM sqlite_schema WHERE name = ?1", e);
     bool same = true;
     for (size_t i = 0; i < projection_n_fixed && same; i++)
-        has_object(&q, projection_fixed[i].name, projection_fixed[i].sql, &same);
+        same = has_layout(&q, a, projection_fixed[i].name, projection_fixed[i].sql);
     for (size_t i = 0; i < p->relations.n && same; i++)
-        has_object(&q, p->relations.at[i]->name, projection_sql(a, p->relations.at[i]), &same);
+        same = has_layout(&q, a, p->relations.at[i]->name, projection_sql(a, p->relations.at[i]));
     ohmen_status status = query_end(&q);
     arena_free(a);
     if (status == OHMEN_OK)

@@ -23,8 +23,7 @@ static ohmen_status check_head(struct store *s, ohmen_error *e)
 {
     int64_t application = 0, format = 0;
     const char *name = s->base.name;
-    ohmen_status status =
-        query_number(&s->base, "PRAGMA application_id", 0, 0, &application, e);
+    ohmen_status status = query_number(&s->base, "PRAGMA application_id", 0, 0, &application, e);
     if (status == OHMEN_OK)
         status = query_number(&s->base, "PRAGMA user_version", 0, 0, &format, e);
     if (status != OHMEN_OK)
@@ -62,14 +61,12 @@ static void add_statement(struct arena *a, const char *sql, size_t n, struct sta
 {
     static const struct {
         const char *begin, *type;
-    } forms[] = {{"CREATE TABLE ", "table"},
-                 {"CREATE INDEX ", "index"},
-                 {"CREATE TRIGGER ", "trigger"}};
+    } forms[] = {
+        {"CREATE TABLE ", "table"}, {"CREATE INDEX ", "index"}, {"CREATE TRIGGER ", "trigger"}};
     for (size_t i = 0; i < sizeof forms / sizeof forms[0]; i++)
         if (text_starts(sql, forms[i].begin))
-            *array_push(a, out) = (struct statement){forms[i].type,
-                                                     word_at(a, sql + strlen(forms[i].begin)),
-                                                     arena_strn(a, sql, n)};
+            *array_push(a, out) = (struct statement){
+                forms[i].type, word_at(a, sql + strlen(forms[i].begin)), arena_strn(a, sql, n)};
 }
 
 static struct statements enduring(struct arena *a)
@@ -123,8 +120,9 @@ static ohmen_status check_foreign(struct store *s, const struct statements *all,
     while (query_row(&q)) {
         const char *type = query_name(&q, 0), *name = query_name(&q, 1);
         if (!is_enduring(all, type, name))
-            query_fail(&q, OHMEN_REGISTER, "%s is damaged: it holds a %s %s that ohmen does not make",
-                       s->base.name, type, name);
+            query_fail(&q, OHMEN_REGISTER,
+                       "%s is damaged: it holds a %s %s that ohmen does not make", s->base.name,
+                       type, name);
     }
     return query_end(&q);
 }

@@ -28,9 +28,9 @@ ohmen_status store_head(struct store *s, uint64_t *seq, ohmen_error *e)
 ohmen_status store_at_time(struct store *s, int64_t utc, uint64_t *seq, ohmen_error *e)
 {
     int64_t found;
-    ohmen_status status = query_number(
-        &s->base, "SELECT seq FROM entry WHERE utc <= ?1 ORDER BY seq DESC LIMIT 1", utc, 0,
-        &found, e);
+    ohmen_status status =
+        query_number(&s->base, "SELECT seq FROM entry WHERE utc <= ?1 ORDER BY seq DESC LIMIT 1",
+                     utc, 0, &found, e);
     if (status == OHMEN_OK)
         *seq = (uint64_t)found;
     return status;
@@ -74,7 +74,7 @@ static void merge(struct arena *a, const struct state_rows *older, const struct 
     size_t i = 0, j = 0;
     array_reserve(a, out, older->n + delta->n);
     while (i < older->n || j < delta->n) {
-        int order = i == older->n  ? 1
+        int order = i == older->n   ? 1
                     : j == delta->n ? -1
                                     : compare_rows(&older->at[i], &delta->at[j]);
         const struct state_row *row = order < 0 ? &older->at[i] : NULL;
@@ -215,8 +215,8 @@ static void read_observation(struct query *q, struct arena *a, struct store_obse
                                       .note = query_copy(q, 7, a),
                                       .count = query_int(q, 8)};
     if (!date || !date_read(date, &out->day))
-        query_fail(q, OHMEN_REGISTER, "%s is damaged: observation %llu has no date",
-                   q->base->name, (unsigned long long)out->number);
+        query_fail(q, OHMEN_REGISTER, "%s is damaged: observation %llu has no date", q->base->name,
+                   (unsigned long long)out->number);
 }
 
 ohmen_status store_state_observations(struct store *s, uint64_t at, struct store_observations *out,

@@ -21,20 +21,23 @@
 struct store;
 
 enum store_mode {
-    STORE_READ,  /* stores nothing; pages that a crash left in the log may be moved into the
-                    file; read-only media are opened immutable */
+    STORE_READ, /* stores nothing; pages that a crash left in the log may be moved into the
+                   file; read-only media are opened immutable */
     STORE_WRITE
 };
 
-/* Creates a new register file; one that exists is refused. It has no entry yet. */
+/* Creates a new register file, all or nothing; a name that is taken is refused
+ * (OHMEN_INPUT). It has no entry yet. */
 ohmen_status store_create(const char *path, ohmen_error *e);
 
 /* Opens a register; closed when `a` is freed. Refused, each with a sentence of its
- * own: no such file, no register (not SQLite, other application), written by a newer
- * ohmen, damaged (schema differs, integrity check fails), not writable. All memory
- * but SQLite's own comes from `a`. */
-ohmen_status store_open(struct arena *a, const char *path, enum store_mode mode,
-                        struct store **out, ohmen_error *e);
+ * own: no such file (OHMEN_UNKNOWN), no register (not SQLite, other application),
+ * written by a newer ohmen, damaged (enduring tables or meta differ), not writable, on
+ * a file system shared over a network. Only store_verify looks at every page; damage
+ * that a read meets is OHMEN_REGISTER then. All memory but SQLite's own comes from `a`,
+ * results included: they live as long as `a`. */
+ohmen_status store_open(struct arena *a, const char *path, enum store_mode mode, struct store **out,
+                        ohmen_error *e);
 
 /* Number of the newest entry, 0 in an empty register. */
 ohmen_status store_head(struct store *s, uint64_t *seq, ohmen_error *e);
@@ -53,21 +56,21 @@ struct store_observation {
     uint64_t entry, number; /* number: order of arrival, unique */
     const char *ident;      /* its key at the source, or content hash plus ordinal */
     day day;
-    const char *what, *subject, *result, *note; /* what: kind of observation */
-    int64_t count;          /* n; 1 where a row is one event */
+    const char *what, *subject, *result, *note; /* what: kind of observation; NULL is "" */
+    int64_t count;                              /* n; 1 where a row is one event */
 };
 struct store_observations ARRAY_BODY(struct store_observation);
 
-/* All live objects as of entry `at` (UINT64_MAX: the newest), in order of kind and
- * id; bodies are re-hashed on reading and a wrong one is OHMEN_REGISTER. Costs no more
- * than a constant factor over reading the present, whatever `at` is (snapshots). */
+/* All live objects as of entry `at` (UINT64_MAX: the newest), in order of enum kind and
+ * bytes of id; bodies are re-hashed on reading and a wrong one is OHMEN_REGISTER. Costs
+ * no more than a constant factor over reading the present, whatever `at` is (snapshots). */
 ohmen_status store_state(struct store *s, uint64_t at, struct store_objects *out, ohmen_error *e);
 
 /* Observations that are not withdrawn as of `at`, in order of day, what, subject, ident. */
 ohmen_status store_state_observations(struct store *s, uint64_t at, struct store_observations *out,
                                       ohmen_error *e);
 
-/* The number of the last entry at or before that second. */
+/* The number of the last entry at or before that second; 0 when there is none. */
 ohmen_status store_at_time(struct store *s, int64_t utc, uint64_t *seq, ohmen_error *e);
 
 /* Hash of the whole state as of `at`: objects and observations, not the history that led
@@ -78,7 +81,7 @@ ohmen_status store_content_hash(struct store *s, uint64_t at, char hash[STORE_HA
 struct store_change {
     enum kind kind;
     const char *id;
-    const char *json; /* canonical body; NULL: removed */
+    const char *json; /* canonical body that fits its kind, zero-terminated; NULL: removed */
     size_t n;
 };
 
@@ -107,15 +110,16 @@ struct store_transaction {
  * commit. Changes that equal the present version and observations that are known are
  * left out; when nothing is left no entry is written and *seq is 0. OHMEN_CONFLICT,
  * naming the objects, when any object that is written or read changed since
- * `prepared_on`. Derived tables, references and snapshots follow in the same
- * transaction. */
+ * `prepared_on`, or when another writer holds the lock for more than five seconds. A
+ * withdrawn observation stays known. Derived tables, references and snapshots follow in
+ * the same transaction. */
 ohmen_status store_commit(struct store *s, const struct store_transaction *t, uint64_t *seq,
                           ohmen_error *e);
 
 /* Entries first .. last in order (0 .. UINT64_MAX: all). */
 struct store_entries ARRAY_BODY(struct store_entry);
-ohmen_status store_entries(struct store *s, uint64_t first, uint64_t last, struct store_entries *out,
-                           ohmen_error *e);
+ohmen_status store_entries(struct store *s, uint64_t first, uint64_t last,
+                           struct store_entries *out, ohmen_error *e);
 
 /* Versions of one object (or, with id NULL, all versions of all), in order of entry. */
 struct store_version {

@@ -76,8 +76,8 @@ static void check_body(struct audit *v, struct query *q)
     const char *json = query_bytes(q, 3, &n), *kind = query_name(q, 1);
     journal_body_hash(v->a, kind, query_int(q, 2), json, n, hash);
     if (!same(hash, query_text(q, 0)))
-        audit_find(v, "body %s of kind %s is not what was stored: its hash is %s",
-                   query_name(q, 0), kind, hash);
+        audit_find(v, "body %s of kind %s is not what was stored: its hash is %s", query_name(q, 0),
+                   kind, hash);
     if (!query_int(q, 4))
         audit_find(v, "body %s belongs to no version", query_name(q, 0));
 }
@@ -145,8 +145,7 @@ static ohmen_status check_entry(struct audit *v, const struct journal_entry *ent
     journal_entry_hash(v->a, entry, hash);
     if (!same(entry->hash, hash))
         audit_find(v, "entry %lld is not what was stored: its hash is %s", number, hash);
-    ohmen_status status =
-        journal_digest(&v->s->base, v->a, entry->seq, &counted, digest, e);
+    ohmen_status status = journal_digest(&v->s->base, v->a, entry->seq, &counted, digest, e);
     if (status != OHMEN_OK)
         return status;
     if (!same(entry->digest, digest))
@@ -195,10 +194,9 @@ static ohmen_status check_strays(struct audit *v, ohmen_error *e)
 
 /* --- signatures and seals: chains of their own --- */
 
-static ohmen_status check_chain(struct audit *v, const char *what, const char *sql, int prev_column,
-                                void (*hash_row)(struct query *, struct arena *,
-                                                 char[STORE_HASH_TEXT]),
-                                ohmen_error *e)
+static ohmen_status
+check_chain(struct audit *v, const char *what, const char *sql, int prev_column,
+            void (*hash_row)(struct query *, struct arena *, char[STORE_HASH_TEXT]), ohmen_error *e)
 {
     const char *prev = JOURNAL_FIRST;
     int64_t number = 0;
@@ -240,10 +238,14 @@ static ohmen_status check_all(struct audit *v)
     static const struct {
         const char *what;
         ohmen_status (*check)(struct audit *, ohmen_error *);
-    } checks[] = {{"the schema", check_schema},     {"the file", check_pages},
-                  {"the ties of rows", check_keys}, {"bodies", check_bodies},
-                  {"versions", check_versions},     {"entries", check_entries},
-                  {"ties to entries", check_strays}, {"signatures", check_signatures},
+    } checks[] = {{"the schema", check_schema},
+                  {"the file", check_pages},
+                  {"the ties of rows", check_keys},
+                  {"bodies", check_bodies},
+                  {"versions", check_versions},
+                  {"entries", check_entries},
+                  {"ties to entries", check_strays},
+                  {"signatures", check_signatures},
                   {"seals", check_seals}};
     ohmen_status status = OHMEN_OK;
     for (size_t i = 0; i < sizeof checks / sizeof checks[0] && status == OHMEN_OK; i++) {
@@ -258,8 +260,7 @@ ohmen_status store_verify(struct store *s, struct store_findings *out, ohmen_err
 {
     struct audit v = {.s = s, .a = arena_child(s->arena), .e = e};
     ohmen_error why = OHMEN_ERROR_INIT;
-    ohmen_status status =
-        audit_outcome(&v, "the file", store_read_begin(s, &why), &why);
+    ohmen_status status = audit_outcome(&v, "the file", store_read_begin(s, &why), &why);
     if (status == OHMEN_OK)
         status = store_read_end(s, check_all(&v), e);
     arena_free(v.a);

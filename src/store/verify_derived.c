@@ -17,7 +17,8 @@ static int compare_cells(struct query *p, struct query *q, int column)
     bool no_p = query_is_null(p, column), no_q = query_is_null(q, column);
     if (no_p || no_q)
         return (int)no_q - (int)no_p;
-    int type_p = sqlite3_column_type(p->stmt, column), type_q = sqlite3_column_type(q->stmt, column);
+    int type_p = sqlite3_column_type(p->stmt, column),
+        type_q = sqlite3_column_type(q->stmt, column);
     if (type_p != type_q)
         return type_p < type_q ? -1 : 1;
     if (type_p != SQLITE_INTEGER)

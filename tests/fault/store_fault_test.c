@@ -4,35 +4,33 @@
  * the commit comes through. Afterwards the entry is wholly there or not at all, the
  * audit finds nothing, and the same commit made again works. */
 #include <check.h>
-#include <signal.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
 #include <sys/stat.h>
-#include <sys/wait.h>
 #include <unistd.h>
 
-#include "base/file.h"
 #include "failmem.h"
 #include "sample.h"
-#include "shimvfs.h"
+#include "scene.h"
 #include "store/internal.h"
 
-/* --- the register before, and what it may be afterwards --- */
+/* --- the job --- */
 
-struct scene {
-    struct arena *a;
-    bool settings; /* the entry changes the settings: all derived tables are made anew */
-    const char *path;
-    char *bytes; /* of the register before, one closed file */
-    size_t n;
-    char before[STORE_HASH_TEXT], after[STORE_HASH_TEXT]; /* contents */
-};
-
-static void must(ohmen_status status, const ohmen_error *e)
+/* Entry 1: the sample. */
+static void make_first(struct arena *a, const char *path)
 {
-    if (status != OHMEN_OK)
-        ck_abort_msg("%s: %s", ohmen_status_text(status), e->text);
+    struct store *s;
+    struct sample t;
+    uint64_t seq;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    scene_must(store_create(path, &e), &e);
+    struct arena *writing = arena_child(a);
+    scene_must(store_open(writing, path, STORE_WRITE, &s, &e), &e);
+    sample_begin(&t, writing, 0);
+    sample_fill(&t);
+    scene_must(store_commit(s, sample_transaction(&t), &seq, &e), &e);
+    arena_free(writing);
 }
 
 /* A realistic entry: new, changed and removed objects of several kinds, observations. */
@@ -51,142 +49,47 @@ static void second_entry(struct sample *t, struct arena *a, bool settings)
     sample_observe(t, "log-31", 20004, "V-1");
 }
 
-static ohmen_status commit_second(const struct scene *c, const char *vfs, struct arena *a,
-                                  ohmen_error *e)
+static ohmen_status commit_second(void *settings, const char *vfs, struct arena *a,
+                                  const char *path, ohmen_error *e)
 {
     struct store *s;
     struct sample t;
     uint64_t seq;
-    ohmen_status status = store_open_on(vfs, a, c->path, STORE_WRITE, &s, e);
+    ohmen_status status = store_open_on(vfs, a, path, STORE_WRITE, &s, e);
     if (status != OHMEN_OK)
         return status;
-    second_entry(&t, a, c->settings);
+    second_entry(&t, a, settings != NULL);
     status = store_commit(s, sample_transaction(&t), &seq, e);
     if (status == OHMEN_OK && seq != 2)
         return error_set(e, OHMEN_INTERNAL, "the entry is number %llu", (unsigned long long)seq);
     return status;
 }
 
-/* Makes the register on its own file system and closes it. */
-static void make_first(struct arena *a, const char *path)
+/* With `settings` the entry changes the settings too: all derived tables are made anew. */
+static struct scene commit_scene(bool settings)
 {
-    struct store *s;
-    struct sample t;
-    uint64_t seq;
-    ohmen_error e = OHMEN_ERROR_INIT;
-    must(store_create(path, &e), &e);
-    struct arena *writing = arena_child(a);
-    must(store_open(writing, path, STORE_WRITE, &s, &e), &e);
-    sample_begin(&t, writing, 0);
-    sample_fill(&t);
-    must(store_commit(s, sample_transaction(&t), &seq, &e), &e);
-    arena_free(writing);
+    static int yes;
+    return scene_new(make_first, commit_second, settings ? &yes : NULL);
 }
 
-static void content_of(struct arena *a, const char *path, char hash[STORE_HASH_TEXT])
-{
-    struct store *s;
-    ohmen_error e = OHMEN_ERROR_INIT;
-    struct arena *reading = arena_child(a);
-    must(store_open(reading, path, STORE_WRITE, &s, &e), &e);
-    must(store_content_hash(s, UINT64_MAX, hash, &e), &e);
-    arena_free(reading);
-}
-
-static void scene_back(const struct scene *c)
-{
-    static const char *const ends[] = {"-wal", "-shm"};
-    ohmen_error e = OHMEN_ERROR_INIT;
-    for (size_t i = 0; i < 2; i++) {
-        char name[4096];
-        snprintf(name, sizeof name, "%s%s", c->path, ends[i]);
-        unlink(name);
-    }
-    must(file_write(c->path, c->bytes, c->n, &e), &e);
-}
-
-static struct scene scene_new(bool settings)
-{
-    struct scene c = {.a = arena_new(NULL), .settings = settings};
-    ohmen_error e = OHMEN_ERROR_INIT;
-    ck_assert_ptr_nonnull(c.a);
-    c.path = arena_printf(c.a, "%s/quay.ohmen", sample_folder(c.a));
-    make_first(c.a, c.path);
-    must(file_read(c.a, c.path, 1 << 26, &c.bytes, &c.n, &e), &e);
-    content_of(c.a, c.path, c.before);
-    struct arena *writing = arena_child(c.a);
-    must(commit_second(&c, NULL, writing, &e), &e);
-    arena_free(writing);
-    content_of(c.a, c.path, c.after);
-    ck_assert_str_ne(c.before, c.after);
-    return c;
-}
-
-/* Wholly there or not at all, and sound. `status`: what the commit said. With
- * `certain`, a commit that failed has left nothing (only a lost power may both end the
- * program and leave the entry). Returns whether the entry is there. */
-static bool whole_or_nothing(const struct scene *c, ohmen_status status, bool certain)
-{
-    struct store *s;
-    struct store_findings found = {0};
-    char hash[STORE_HASH_TEXT];
-    ohmen_error e = OHMEN_ERROR_INIT;
-    struct arena *a = arena_child(c->a);
-    must(store_open(a, c->path, STORE_WRITE, &s, &e), &e);
-    must(store_verify(s, &found, &e), &e);
-    if (found.n > 0)
-        ck_abort_msg("%zu findings, first: %s", found.n, found.at[0]);
-    must(store_content_hash(s, UINT64_MAX, hash, &e), &e);
-    bool there = strcmp(hash, c->after) == 0;
-    ck_assert(there || strcmp(hash, c->before) == 0);
-    ck_assert(there || status != OHMEN_OK);
-    ck_assert(!there || !certain || status == OHMEN_OK);
-    arena_free(a);
-    return there;
-}
-
-/* The same commit again, where the entry is not there yet. */
-static void retry(const struct scene *c, bool there)
-{
-    ohmen_error e = OHMEN_ERROR_INIT;
-    struct arena *a = arena_child(c->a);
-    if (!there)
-        must(commit_second(c, NULL, a, &e), &e);
-    arena_free(a);
-    ck_assert(whole_or_nothing(c, OHMEN_OK, true));
-}
+/* Every operation is struck; behind each of these the commit is also made again. */
+enum { RETRY_EACH = 5 };
 
 /* --- the disk --- */
 
-/* Runs the commit with the file system struck at operation k; false once it came through
- * untouched. */
-static bool struck_commit(const struct scene *c, enum shim_way way, size_t k, uint64_t seed,
-                          ohmen_status *status, ohmen_error *e)
-{
-    struct shim f;
-    scene_back(c);
-    struct arena *a = arena_new(NULL);
-    shim_install(&f, "shim", way, k);
-    *e = (ohmen_error)OHMEN_ERROR_INIT;
-    *status = commit_second(c, "shim", a, e);
-    arena_free(a);
-    if (way == SHIM_POWER)
-        shim_power_cut(&f, seed);
-    shim_remove(&f);
-    return f.struck;
-}
-
 static void fail_everywhere(bool settings)
 {
-    struct scene c = scene_new(settings);
+    struct scene c = commit_scene(settings);
     ohmen_status status;
     ohmen_error e;
     size_t k = 0, failed = 0;
-    for (; struck_commit(&c, SHIM_FAIL, k, 0, &status, &e); k++) {
+    for (; scene_struck(&c, SHIM_FAIL, k, 0, &status, &e); k++) {
         if (status != OHMEN_OK)
             failed++;
         ck_assert(status == OHMEN_OK || status == OHMEN_IO || status == OHMEN_REGISTER);
-        retry(&c, whole_or_nothing(&c, status, true));
+        bool whole = scene_whole(&c, status, true);
+        if (k % RETRY_EACH == 0)
+            scene_retry(&c, whole);
     }
     ck_assert_int_eq(status, OHMEN_OK);
     ck_assert_uint_ge(k, 40);
@@ -208,15 +111,17 @@ END_TEST
 
 START_TEST(a_full_disk_leaves_all_or_nothing)
 {
-    struct scene c = scene_new(false);
+    struct scene c = commit_scene(false);
     ohmen_status status;
     ohmen_error e;
     size_t k = 0, told = 0;
-    for (; struck_commit(&c, SHIM_FULL, k, 0, &status, &e); k++) {
+    for (; scene_struck(&c, SHIM_FULL, k, 0, &status, &e); k++) {
         ck_assert(status == OHMEN_OK || status == OHMEN_IO);
         if (status == OHMEN_IO && strstr(e.text, "no room left"))
             told++;
-        retry(&c, whole_or_nothing(&c, status, true));
+        bool whole = scene_whole(&c, status, true);
+        if (k % RETRY_EACH == 0)
+            scene_retry(&c, whole);
     }
     ck_assert_int_eq(status, OHMEN_OK);
     ck_assert_uint_ge(told, 10);
@@ -227,21 +132,21 @@ END_TEST
 /* Seed 0 loses all that was not synced; the others keep a random subset of sectors. */
 static void cut_everywhere(bool settings, uint64_t seeds)
 {
-    struct scene c = scene_new(settings);
+    struct scene c = commit_scene(settings);
     size_t cuts = 0, there = 0;
     for (uint64_t seed = 0; seed < seeds; seed++) {
         ohmen_status status;
         ohmen_error e;
         size_t k = 0;
-        for (; struck_commit(&c, SHIM_POWER, k, seed ? seed * 1000 + k : 0, &status, &e); k++) {
-            bool whole = whole_or_nothing(&c, status, false);
+        for (; scene_struck(&c, SHIM_POWER, k, seed ? seed * 1000 + k : 0, &status, &e); k++) {
+            bool whole = scene_whole(&c, status, false);
             there += whole;
             cuts++;
-            if (seed <= 1)
-                retry(&c, whole);
+            if ((k + seed) % RETRY_EACH == 0)
+                scene_retry(&c, whole);
         }
         ck_assert_int_eq(status, OHMEN_OK);
-        ck_assert(whole_or_nothing(&c, status, true));
+        ck_assert(scene_whole(&c, status, true));
         ck_assert_uint_ge(k, 40);
     }
     ck_assert_uint_ge(there, seeds - 1); /* after the commit, while it is closed */
@@ -251,13 +156,13 @@ static void cut_everywhere(bool settings, uint64_t seeds)
 
 START_TEST(a_power_cut_leaves_all_or_nothing)
 {
-    cut_everywhere(false, 6);
+    cut_everywhere(false, 5);
 }
 END_TEST
 
 START_TEST(a_power_cut_during_a_rebuild_leaves_all_or_nothing)
 {
-    cut_everywhere(true, 3);
+    cut_everywhere(true, 2);
 }
 END_TEST
 
@@ -281,12 +186,43 @@ START_TEST(failing_io_leaves_no_half_register)
         if (status == OHMEN_OK) {
             struct store *s;
             struct arena *reading = arena_child(a);
-            must(store_open(reading, path, STORE_WRITE, &s, &e), &e);
+            scene_must(store_open(reading, path, STORE_WRITE, &s, &e), &e);
             arena_free(reading);
             unlink(path);
         }
     }
     ck_assert_uint_ge(k, 20);
+    arena_free(a);
+}
+END_TEST
+
+START_TEST(failing_io_leaves_no_half_backup)
+{
+    struct arena *a = arena_new(NULL);
+    const char *path = arena_printf(a, "%s/quay.ohmen", sample_folder(a));
+    const char *copy = arena_printf(a, "%s.copy", path);
+    size_t k = 0, failed = 0;
+    make_first(a, path);
+    for (;; k++) {
+        struct shim f;
+        struct stat st;
+        struct store *s;
+        ohmen_error e = OHMEN_ERROR_INIT;
+        struct arena *copying = arena_child(a);
+        shim_install(&f, "shim", SHIM_FAIL, k);
+        ohmen_status status = store_open_on("shim", copying, path, STORE_READ, &s, &e);
+        if (status == OHMEN_OK)
+            status = store_backup(s, copy, &e);
+        arena_free(copying);
+        shim_remove(&f);
+        failed += status != OHMEN_OK;
+        ck_assert_int_eq(stat(copy, &st) == 0, status == OHMEN_OK);
+        unlink(copy);
+        if (!f.struck)
+            break;
+    }
+    ck_assert_uint_ge(failed, k / 3);
+    ck_assert_uint_ge(k, 100);
     arena_free(a);
 }
 END_TEST
@@ -304,14 +240,14 @@ static ohmen_status commit_with(const struct scene *c, const struct mem *mem)
         return OHMEN_MEMORY;
     }
     arena_guard(a, &out_of_memory);
-    ohmen_status status = commit_second(c, NULL, a, NULL);
+    ohmen_status status = c->job(c->ctx, NULL, a, c->path, NULL);
     arena_free(a);
     return status;
 }
 
 START_TEST(failing_allocations_leave_nothing)
 {
-    struct scene c = scene_new(false);
+    struct scene c = commit_scene(false);
     for (size_t k = 0;; k++) {
         struct failmem f;
         scene_back(&c);
@@ -324,9 +260,72 @@ START_TEST(failing_allocations_leave_nothing)
             break;
         }
         ck_assert_int_eq(status, OHMEN_MEMORY);
-        retry(&c, whole_or_nothing(&c, status, true));
+        scene_retry(&c, scene_whole(&c, status, true));
     }
     arena_free(c.a);
+}
+END_TEST
+
+/* Runs a job on a path with memory that fails at every k in turn; returns how often. */
+static size_t starve(ohmen_status (*job)(struct arena *, const char *), const char *path)
+{
+    for (size_t k = 0;; k++) {
+        jmp_buf out_of_memory;
+        struct failmem f;
+        failmem_init(&f, k);
+        ohmen_status status = OHMEN_MEMORY;
+        struct arena *a = arena_new(&f.mem);
+        if (a && setjmp(out_of_memory) == 0) {
+            arena_guard(a, &out_of_memory);
+            status = job(a, path);
+        }
+        arena_free(a);
+        failmem_check(&f);
+        if (!f.failed) {
+            ck_assert_int_eq(status, OHMEN_OK);
+            return k;
+        }
+        ck_assert_int_eq(status, OHMEN_MEMORY);
+    }
+}
+
+static ohmen_status read_all(struct arena *a, const char *path)
+{
+    struct store *s;
+    struct store_findings found = {0};
+    const char *dump;
+    ohmen_status status = store_open(a, path, STORE_READ, &s, NULL);
+    if (status == OHMEN_OK)
+        status = sample_dump(a, s, UINT64_MAX, &dump, NULL);
+    if (status == OHMEN_OK)
+        status = store_verify(s, &found, NULL);
+    return status == OHMEN_OK && found.n > 0 ? OHMEN_REGISTER : status;
+}
+
+START_TEST(failing_allocations_do_not_harm_readers)
+{
+    struct arena *a = arena_new(NULL);
+    const char *path = arena_printf(a, "%s/quay.ohmen", sample_folder(a));
+    make_first(a, path);
+    ck_assert_uint_ge(starve(read_all, path), 20);
+    arena_free(a);
+}
+END_TEST
+
+static ohmen_status create_with(struct arena *a, const char *path)
+{
+    ohmen_status status = store_create_on(NULL, arena_mem(a), path, NULL);
+    struct stat st;
+    ck_assert_int_eq(stat(path, &st) == 0, status == OHMEN_OK);
+    return status;
+}
+
+START_TEST(failing_allocations_leave_no_half_register)
+{
+    struct arena *a = arena_new(NULL);
+    const char *path = arena_printf(a, "%s/new.ohmen", sample_folder(a));
+    ck_assert_uint_ge(starve(create_with, path), 10);
+    arena_free(a);
 }
 END_TEST
 
@@ -334,7 +333,7 @@ END_TEST
  * counts what is in use by the whole process, which here is what one register needs. */
 START_TEST(sqlites_memory_leaves_nothing)
 {
-    struct scene c = scene_new(false);
+    struct scene c = commit_scene(false);
     sqlite3_int64 least = 16384, step = 8192, limit;
     size_t failed = 0;
     for (limit = least;; limit += step) {
@@ -342,10 +341,10 @@ START_TEST(sqlites_memory_leaves_nothing)
         struct arena *a = arena_new(NULL);
         ohmen_error e = OHMEN_ERROR_INIT;
         sqlite3_hard_heap_limit64(sqlite3_memory_used() + limit);
-        ohmen_status status = commit_second(&c, NULL, a, &e);
+        ohmen_status status = c.job(c.ctx, NULL, a, c.path, &e);
         sqlite3_hard_heap_limit64(0);
         arena_free(a);
-        whole_or_nothing(&c, status, true);
+        scene_whole(&c, status, true);
         if (status == OHMEN_OK)
             break;
         ck_assert_int_eq(status, OHMEN_MEMORY);
@@ -358,49 +357,18 @@ END_TEST
 
 /* --- kill -9 --- */
 
-static void kill_at(void *ctx, size_t number)
-{
-    if (number == *(const size_t *)ctx)
-        raise(SIGKILL);
-}
-
-/* Commits entry 2 in a child that dies at operation k; false when it lived. */
-static bool killed_commit(const struct scene *c, size_t k)
-{
-    scene_back(c);
-    pid_t child = fork();
-    ck_assert_int_ge(child, 0);
-    if (child == 0) {
-        struct shim f;
-        shim_install(&f, "shim", SHIM_FAIL, SHIM_NEVER);
-        f.on_operation = kill_at;
-        f.ctx = &k;
-        struct arena *a = arena_new(NULL);
-        ohmen_status status = commit_second(c, "shim", a, NULL);
-        arena_free(a);
-        _exit(status == OHMEN_OK ? 0 : 1);
-    }
-    int status;
-    ck_assert_int_eq(waitpid(child, &status, 0), child);
-    if (WIFSIGNALED(status)) {
-        ck_assert_int_eq(WTERMSIG(status), SIGKILL);
-        return true;
-    }
-    ck_assert_int_eq(WEXITSTATUS(status), 0);
-    return false;
-}
-
 /* Every operation of opening, committing and closing is a moment: more than 200. */
 START_TEST(killed_at_any_moment)
 {
-    struct scene c = scene_new(false);
+    struct scene c = commit_scene(false);
     size_t k = 0, there = 0;
-    for (; killed_commit(&c, k); k++) {
-        bool whole = whole_or_nothing(&c, OHMEN_IO, false);
+    for (; scene_killed(&c, k); k++) {
+        bool whole = scene_whole(&c, OHMEN_IO, false);
         there += whole;
-        retry(&c, whole);
+        if (k % RETRY_EACH == 0)
+            scene_retry(&c, whole);
     }
-    ck_assert(whole_or_nothing(&c, OHMEN_OK, true));
+    ck_assert(scene_whole(&c, OHMEN_OK, true));
     ck_assert_uint_ge(k, 200);
     ck_assert_uint_ge(there, 1);
     ck_assert_uint_le(there, k - 1);
@@ -412,14 +380,17 @@ int main(void)
 {
     Suite *suite = suite_create("store fault");
     TCase *tc = tcase_create("fault");
-    tcase_set_timeout(tc, 600);
+    tcase_set_timeout(tc, 1800);
     tcase_add_test(tc, failing_io_leaves_all_or_nothing);
     tcase_add_test(tc, a_full_disk_leaves_all_or_nothing);
     tcase_add_test(tc, a_power_cut_leaves_all_or_nothing);
     tcase_add_test(tc, failing_io_during_a_rebuild_leaves_all_or_nothing);
     tcase_add_test(tc, a_power_cut_during_a_rebuild_leaves_all_or_nothing);
     tcase_add_test(tc, failing_io_leaves_no_half_register);
+    tcase_add_test(tc, failing_io_leaves_no_half_backup);
     tcase_add_test(tc, failing_allocations_leave_nothing);
+    tcase_add_test(tc, failing_allocations_do_not_harm_readers);
+    tcase_add_test(tc, failing_allocations_leave_no_half_register);
     tcase_add_test(tc, sqlites_memory_leaves_nothing);
     tcase_add_test(tc, killed_at_any_moment);
     suite_add_tcase(suite, tc);

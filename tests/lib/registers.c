@@ -25,12 +25,12 @@ const struct register_shape register_small = {.sources = 4,
 
 /* --- drawing --- */
 
-bool chance(struct generator *g, unsigned n)
+bool random_chance(struct generator *g, unsigned n)
 {
     return random_index(&g->random, n) == 0;
 }
 
-unsigned draw(struct generator *g, unsigned low, unsigned high)
+unsigned random_draw(struct generator *g, unsigned low, unsigned high)
 {
     return (unsigned)random_range(&g->random, low, high);
 }
@@ -52,15 +52,15 @@ const char *random_text(struct generator *g)
                                         "yes",   "12 kV",  "Ærø",     "#1",    "- or not"};
     struct text t;
     text_init(&t, g->arena);
-    for (unsigned n = draw(g, 1, 4); n > 0; n--)
+    for (unsigned n = random_draw(g, 1, 4); n > 0; n--)
         text_printf(&t, "%s%s", t.n ? " " : "", random_pick(&g->random, words));
     return text_str(&t);
 }
 
 const char *random_date(struct generator *g)
 {
-    return arena_printf(g->arena, "20%02u-%02u-%02u", draw(g, 10, 40), draw(g, 1, 12),
-                        draw(g, 1, 28));
+    return arena_printf(g->arena, "20%02u-%02u-%02u", random_draw(g, 10, 40), random_draw(g, 1, 12),
+                        random_draw(g, 1, 28));
 }
 
 const char *random_id(struct generator *g, enum kind kind)
@@ -68,7 +68,7 @@ const char *random_id(struct generator *g, enum kind kind)
     return g->ids[kind].at[random_index(&g->random, g->ids[kind].n)];
 }
 
-const char *near_id(struct generator *g, enum kind kind, unsigned around, unsigned width)
+const char *random_near_id(struct generator *g, enum kind kind, unsigned around, unsigned width)
 {
     const struct ids *ids = &g->ids[kind];
     size_t window = ids->n < width ? ids->n : width;
@@ -80,35 +80,35 @@ const char *near_id(struct generator *g, enum kind kind, unsigned around, unsign
 
 static const struct place nowhere = {.file = "random"};
 
-struct node *scalar(struct generator *g, const char *text)
+struct node *make_scalar(struct generator *g, const char *text)
 {
     return node_scalar(g->arena, FORM_TEXT, text, nowhere);
 }
 
-struct node *map(struct generator *g)
+struct node *make_map(struct generator *g)
 {
     return node_map(g->arena, nowhere);
 }
 
-struct node *list(struct generator *g)
+struct node *make_list(struct generator *g)
 {
     return node_list(g->arena, nowhere);
 }
 
-void add(struct generator *g, struct node *m, const char *key, struct node *value)
+void put_node(struct generator *g, struct node *m, const char *key, struct node *value)
 {
     node_add(g->arena, m, key, nowhere, value);
 }
 
-void add_text(struct generator *g, struct node *m, const char *key, const char *text)
+void put_text(struct generator *g, struct node *m, const char *key, const char *text)
 {
-    add(g, m, key, scalar(g, text));
+    put_node(g, m, key, make_scalar(g, text));
 }
 
-struct node *pair_of(struct generator *g, const char *key, struct node *value)
+struct node *make_pair(struct generator *g, const char *key, struct node *value)
 {
-    struct node *m = map(g);
-    add(g, m, key, value);
+    struct node *m = make_map(g);
+    put_node(g, m, key, value);
     return m;
 }
 
@@ -135,11 +135,11 @@ static const char *random_unit(struct generator *g, enum field_dim dim)
 
 const char *random_literal(struct generator *g, enum field_dim dim)
 {
-    if (dim == PROBABILITY && chance(g, 2))
+    if (dim == PROBABILITY && random_chance(g, 2))
         return arena_printf(g->arena, "%s %%", random_number(g, 0.5, 90));
     if (dim == PROBABILITY)
         return random_number(g, 1e-4, 0.9);
-    if (dim == FREQUENCY && chance(g, 4))
+    if (dim == FREQUENCY && random_chance(g, 4))
         return arena_printf(g->arena, "1 in %s a", random_number(g, 2, 500));
     return arena_printf(g->arena, "%s%s", random_number(g, 0.2, 30), random_unit(g, dim));
 }
@@ -172,9 +172,9 @@ static const char *print2(struct generator *g, const char *format, const char *x
 
 static const char *of_probabilities(struct generator *g, unsigned depth)
 {
-    static const char *const forms[] = {"(X) * (Y)",      "min(X; Y)",        "max(X; Y)",
-                                        "exp(-(X)) * (Y)", "((X) + (Y)) / (3 - (Y))"};
-    if (g->ids[KIND_ELEMENT].n && chance(g, 4))
+    static const char *const forms[] = {"(X) * (Y)", "min(X; Y)", "max(X; Y)", "exp(-(X)) * (Y)",
+                                        "((X) + (Y)) / (3 - (Y))"};
+    if (g->ids[KIND_ELEMENT].n && random_chance(g, 4))
         return arena_printf(g->arena, "fails(%s)", random_id(g, KIND_ELEMENT));
     return print2(g, random_pick(&g->random, forms), random_expression(g, PROBABILITY, depth),
                   random_expression(g, PROBABILITY, depth));
@@ -186,32 +186,35 @@ static const char *of_others(struct generator *g, enum field_dim dim, unsigned d
     const char *time = random_expression(g, TIME, depth);
     switch (dim) {
     case MONEY:
-        return chance(g, 2)
+        return random_chance(g, 2)
                    ? print2(g, "(X) * (Y) * 7.5 EUR/kWh", random_expression(g, POWER, depth), time)
                    : print2(g, "(X) * (Y)", random_expression(g, MONEY_RATE, depth), time);
-    case TIME: return print2(g, "(Y) / (1 + log(2 + (X)))", random_expression(g, NUMBER, depth), time);
+    case TIME:
+        return print2(g, "(Y) / (1 + log(2 + (X)))", random_expression(g, NUMBER, depth), time);
     case FREQUENCY: return print2(g, "(X) / (0.3 h + (Y))", random_expression(g, NUMBER, 0), time);
-    case MONEY_RATE: return print2(g, "(X) / (3 d + (Y))", random_expression(g, MONEY, depth), time);
-    case POWER: return print2(g, "(X)^1 * exp(-(Y) / (2 + (Y)))", random_literal(g, POWER),
-                              random_expression(g, NUMBER, depth));
+    case MONEY_RATE:
+        return print2(g, "(X) / (3 d + (Y))", random_expression(g, MONEY, depth), time);
+    case POWER:
+        return print2(g, "(X)^1 * exp(-(Y) / (2 + (Y)))", random_literal(g, POWER),
+                      random_expression(g, NUMBER, depth));
     default: return print2(g, "sqrt(1 + (X)^2)", random_expression(g, NUMBER, depth), time);
     }
 }
 
 const char *random_expression(struct generator *g, enum field_dim dim, unsigned depth)
 {
-    static const char *const forms[] = {
-        "(X) + (Y)",         "min(X; Y)",  "max((X) - (Y); 0.1 * (X); 0.2 * (Y))",
-        "(X) * 0.7 + (Y) / 3", "max(X; Y)"};
+    static const char *const forms[] = {"(X) + (Y)", "min(X; Y)",
+                                        "max((X) - (Y); 0.1 * (X); 0.2 * (Y))",
+                                        "(X) * 0.7 + (Y) / 3", "max(X; Y)"};
     const char *name = known(g, dim);
-    if (depth == 0 || chance(g, 4))
-        return name && !chance(g, 3) ? name : random_literal(g, dim);
+    if (depth == 0 || random_chance(g, 4))
+        return name && !random_chance(g, 3) ? name : random_literal(g, dim);
     if (dim == PROBABILITY)
         return of_probabilities(g, depth - 1);
-    if (chance(g, 2))
+    if (random_chance(g, 2))
         return of_others(g, dim, depth - 1);
     const char *x = random_expression(g, dim, depth - 1), *y = random_expression(g, dim, depth - 1);
-    if (chance(g, 5))
+    if (random_chance(g, 5))
         return arena_printf(g->arena, "lookup(%s; 0.3 -> %s; %s -> %s)",
                             random_expression(g, PROBABILITY, 0), x, random_number(g, 0.4, 0.9), y);
     return print2(g, random_pick(&g->random, forms), x, y);
@@ -222,9 +225,9 @@ const char *random_expression(struct generator *g, enum field_dim dim, unsigned 
 static struct node *two_parts(struct generator *g, const char *key, const char *value,
                               const char *other, const char *second)
 {
-    struct node *m = map(g);
-    add_text(g, m, key, value);
-    add_text(g, m, other, second);
+    struct node *m = make_map(g);
+    put_text(g, m, key, value);
+    put_text(g, m, other, second);
     return m;
 }
 
@@ -235,44 +238,43 @@ static const char *times_unit(struct generator *g, const char *number, const cha
 
 static struct node *three_points(struct generator *g, const char *unit)
 {
-    struct node *m = map(g);
-    bool uniform = chance(g, 3);
-    add_text(g, m, "shape", uniform ? "uniform" : chance(g, 2) ? "pert" : "triangular");
-    add_text(g, m, "from", times_unit(g, random_number(g, 0.01, 0.1), unit));
+    struct node *m = make_map(g);
+    bool uniform = random_chance(g, 3);
+    put_text(g, m, "shape", uniform ? "uniform" : random_chance(g, 2) ? "pert" : "triangular");
+    put_text(g, m, "from", times_unit(g, random_number(g, 0.01, 0.1), unit));
     if (!uniform)
-        add_text(g, m, "most-likely", times_unit(g, random_number(g, 0.11, 0.3), unit));
-    add_text(g, m, "to", times_unit(g, random_number(g, 0.4, 0.9), unit));
+        put_text(g, m, "most-likely", times_unit(g, random_number(g, 0.11, 0.3), unit));
+    put_text(g, m, "to", times_unit(g, random_number(g, 0.4, 0.9), unit));
     return m;
 }
 
 static struct node *discrete(struct generator *g, const char *unit)
 {
-    struct node *values = map(g);
+    struct node *values = make_map(g);
     const char *low = times_unit(g, random_number(g, 0.01, 0.1), unit);
     const char *high = times_unit(g, random_number(g, 0.2, 0.8), unit);
-    add(g, values, "low", two_parts(g, "is", low, "p", random_literal(g, PROBABILITY)));
-    add(g, values, "high", two_parts(g, "is", high, "p", "rest"));
-    return pair_of(g, "values", values);
+    put_node(g, values, "low", two_parts(g, "is", low, "p", random_literal(g, PROBABILITY)));
+    put_node(g, values, "high", two_parts(g, "is", high, "p", "rest"));
+    return make_pair(g, "values", values);
 }
 
 static struct node *range(struct generator *g, const char *unit)
 {
-    return scalar(g, arena_printf(g->arena, "%u %% within %s%s .. %s%s", draw(g, 80, 99),
-                                  random_number(g, 0.01, 0.02), unit,
-                                  random_number(g, 0.03, 0.05), unit));
+    return make_scalar(g, arena_printf(g->arena, "%u %% within %s%s .. %s%s",
+                                       random_draw(g, 80, 99), random_number(g, 0.01, 0.02), unit,
+                                       random_number(g, 0.03, 0.05), unit));
 }
 
 static struct node *random_distribution(struct generator *g, enum field_dim dim)
 {
     const char *unit = random_unit(g, dim);
-    switch (draw(g, 0, 5)) {
+    switch (random_draw(g, 0, 5)) {
     case 0: return three_points(g, unit);
     case 1: return discrete(g, unit);
     case 2: return range(g, unit);
     case 3: /* far enough from 0 */
         return two_parts(g, "mean", times_unit(g, random_number(g, 0.3, 0.5), unit),
-                         "standard-deviation",
-                         times_unit(g, random_number(g, 0.01, 0.05), unit));
+                         "standard-deviation", times_unit(g, random_number(g, 0.01, 0.05), unit));
     case 4:
         if (dim == PROBABILITY || dim == NUMBER)
             return two_parts(g, "a", random_number(g, 0.4, 4), "b", random_number(g, 2, 900));
@@ -281,8 +283,8 @@ static struct node *random_distribution(struct generator *g, enum field_dim dim)
     default: {
         struct node *m = two_parts(g, "median", times_unit(g, random_number(g, 0.01, 0.2), unit),
                                    "error-factor", random_number(g, 1.2, 8));
-        if (dim == PROBABILITY || chance(g, 3))
-            add_text(g, m, "at-most", times_unit(g, "1", unit));
+        if (dim == PROBABILITY || random_chance(g, 3))
+            put_text(g, m, "at-most", times_unit(g, "1", unit));
         return m;
     }
     }
@@ -290,9 +292,9 @@ static struct node *random_distribution(struct generator *g, enum field_dim dim)
 
 struct node *random_quantity(struct generator *g, enum field_dim dim)
 {
-    if (dim != INTEREST && chance(g, 3))
+    if (dim != INTEREST && random_chance(g, 3))
         return random_distribution(g, dim);
-    return scalar(g, random_expression(g, dim, draw(g, 0, g->shape.depth)));
+    return make_scalar(g, random_expression(g, dim, random_draw(g, 0, g->shape.depth)));
 }
 
 /* --- objects --- */
@@ -306,55 +308,56 @@ static void name_ids(struct generator *g, enum kind kind, const char *prefix, un
 static void add_settings(struct generator *g)
 {
     static const char *const skip[] = {"perspectives", "perspective", "criteria", "counts", NULL};
-    struct node *m = map(g), *money = map(g), *people = map(g), *perspectives = map(g);
-    struct node *counts = list(g), *company = list(g), *society = list(g);
-    add_text(g, m, "currency", "EUR");
-    add_text(g, m, "prices", "2026");
-    add_text(g, m, "horizon", arena_printf(g->arena, "%u a", draw(g, 1, 40)));
-    add_text(g, m, "discount", arena_printf(g->arena, "%s %% per a", random_number(g, 0.5, 9)));
-    if (chance(g, 2))
-        add_text(g, m, "start", chance(g, 2) ? "2027" : "2027-07-01");
-    node_push(g->arena, counts, scalar(g, "section"));
-    node_push(g->arena, counts, scalar(g, "bay"));
-    add(g, m, "counts", counts);
-    node_push(g->arena, company, scalar(g, "equipment"));
-    node_push(g->arena, company, scalar(g, "penalty"));
-    node_push(g->arena, society, scalar(g, "lost-load"));
-    node_push(g->arena, society, scalar(g, "equipment"));
-    add(g, perspectives, "society", society);
-    add(g, perspectives, "company", company);
-    add(g, m, "perspectives", perspectives);
-    if (chance(g, 2))
-        add_text(g, m, "perspective", chance(g, 2) ? "society" : "all");
-    add_text(g, money, "scope", scope_words[draw(g, 0, 2)]);
-    add_text(g, money, "acceptable-below", "2 kEUR per a");
-    add_text(g, money, "intolerable-above", "80 kEUR per a");
-    add_text(g, people, "acceptable-below", "1e-6 per a");
-    add_text(g, people, "intolerable-above", "1e-3 per a");
-    add_text(g, people, "disproportion", "3");
-    add_text(g, people, "per-fatality", "2.1 MEUR");
-    struct node *criteria = pair_of(g, "money", money);
+    struct node *m = make_map(g), *money = make_map(g), *people = make_map(g),
+                *perspectives = make_map(g);
+    struct node *counts = make_list(g), *company = make_list(g), *society = make_list(g);
+    put_text(g, m, "currency", "EUR");
+    put_text(g, m, "prices", "2026");
+    put_text(g, m, "horizon", arena_printf(g->arena, "%u a", random_draw(g, 1, 40)));
+    put_text(g, m, "discount", arena_printf(g->arena, "%s %% per a", random_number(g, 0.5, 9)));
+    if (random_chance(g, 2))
+        put_text(g, m, "start", random_chance(g, 2) ? "2027" : "2027-07-01");
+    node_push(g->arena, counts, make_scalar(g, "section"));
+    node_push(g->arena, counts, make_scalar(g, "bay"));
+    put_node(g, m, "counts", counts);
+    node_push(g->arena, company, make_scalar(g, "equipment"));
+    node_push(g->arena, company, make_scalar(g, "penalty"));
+    node_push(g->arena, society, make_scalar(g, "lost-load"));
+    node_push(g->arena, society, make_scalar(g, "equipment"));
+    put_node(g, perspectives, "society", society);
+    put_node(g, perspectives, "company", company);
+    put_node(g, m, "perspectives", perspectives);
+    if (random_chance(g, 2))
+        put_text(g, m, "perspective", random_chance(g, 2) ? "society" : "all");
+    put_text(g, money, "scope", scope_words[random_draw(g, 0, 2)]);
+    put_text(g, money, "acceptable-below", "2 kEUR per a");
+    put_text(g, money, "intolerable-above", "80 kEUR per a");
+    put_text(g, people, "acceptable-below", "1e-6 per a");
+    put_text(g, people, "intolerable-above", "1e-3 per a");
+    put_text(g, people, "disproportion", "3");
+    put_text(g, people, "per-fatality", "2.1 MEUR");
+    struct node *criteria = make_pair(g, "money", money);
     if (g->shape.stored)
-        add(g, criteria, "people", people);
-    if (chance(g, 2))
-        add(g, m, "criteria", criteria);
-    fill(g, m, kinds[KIND_REGISTER].table, skip);
-    add(g, g->root, "register", m);
+        put_node(g, criteria, "people", people);
+    if (random_chance(g, 2))
+        put_node(g, m, "criteria", criteria);
+    fill_fields(g, m, kinds[KIND_REGISTER].table, skip);
+    put_node(g, g->root, "register", m);
 }
 
 /* Objects of which the table says everything. */
 static void add_plain(struct generator *g, enum kind kind)
 {
     static const char *const skip[] = {"in", NULL};
-    struct node *section = map(g);
+    struct node *section = make_map(g);
     for (size_t i = 0; i < g->ids[kind].n; i++) {
-        struct node *m = map(g);
-        if (kind == KIND_SITE && i > 0 && chance(g, 2))
-            add_text(g, m, "in", g->ids[kind].at[draw(g, 0, (unsigned)i - 1)]);
-        fill(g, m, kinds[kind].table, skip);
-        add(g, section, g->ids[kind].at[i], m);
+        struct node *m = make_map(g);
+        if (kind == KIND_SITE && i > 0 && random_chance(g, 2))
+            put_text(g, m, "in", g->ids[kind].at[random_draw(g, 0, (unsigned)i - 1)]);
+        fill_fields(g, m, kinds[kind].table, skip);
+        put_node(g, section, g->ids[kind].at[i], m);
     }
-    add(g, g->root, kinds[kind].section, section);
+    put_node(g, g->root, kinds[kind].section, section);
 }
 
 /* Each may use those before it. */
@@ -362,36 +365,36 @@ static void add_values(struct generator *g)
 {
     static const enum field_dim dims[] = {NUMBER, PROBABILITY, TIME,      POWER,
                                           MONEY,  FREQUENCY,   MONEY_RATE};
-    struct node *section = map(g);
+    struct node *section = make_map(g);
     for (size_t i = 0; i < g->ids[KIND_VALUE].n; i++) {
         enum field_dim dim = dims[i % 7];
-        struct node *m = map(g), *q = random_quantity(g, dim);
-        if (chance(g, 4)) {
-            add(g, section, g->ids[KIND_VALUE].at[i], q); /* the short form */
+        struct node *m = make_map(g), *q = random_quantity(g, dim);
+        if (random_chance(g, 4)) {
+            put_node(g, section, g->ids[KIND_VALUE].at[i], q); /* the short form */
         } else {
-            add(g, m, chance(g, 3) ? "varies" : "is", q);
-            fill(g, m, kinds[KIND_VALUE].table, NULL);
-            add(g, section, g->ids[KIND_VALUE].at[i], m);
+            put_node(g, m, random_chance(g, 3) ? "varies" : "is", q);
+            fill_fields(g, m, kinds[KIND_VALUE].table, NULL);
+            put_node(g, section, g->ids[KIND_VALUE].at[i], m);
         }
         *array_push(g->arena, &g->values) = (struct known_value){g->ids[KIND_VALUE].at[i], dim};
     }
-    add(g, g->root, "values", section);
+    put_node(g, g->root, "values", section);
 }
 
 static struct node *usable_prior(struct generator *g, const char *per)
 {
-    struct node *m = map(g);
+    struct node *m = make_map(g);
     const char *rate = arena_printf(g->arena, "%s per %s", random_number(g, 1e-3, 0.3), per);
-    unsigned form = draw(g, 0, 3);
-    add_text(g, m, form == 1 ? "median" : "mean", rate);
+    unsigned form = random_draw(g, 0, 3);
+    put_text(g, m, form == 1 ? "median" : "mean", rate);
     if (form == 0)
-        add_text(g, m, "weight", random_number(g, 0.3, 6));
+        put_text(g, m, "weight", random_number(g, 0.3, 6));
     if (form == 1 || form == 2)
-        add_text(g, m, "error-factor", random_number(g, 1.3, 12));
+        put_text(g, m, "error-factor", random_number(g, 1.3, 12));
     if (form == 3)
-        add_text(g, m, "form", chance(g, 2) ? "constrained" : "fixed");
-    if (chance(g, 3) && g->ids[KIND_SOURCE].n)
-        add_text(g, m, "source", random_id(g, KIND_SOURCE));
+        put_text(g, m, "form", random_chance(g, 2) ? "constrained" : "fixed");
+    if (random_chance(g, 3) && g->ids[KIND_SOURCE].n)
+        put_text(g, m, "source", random_id(g, KIND_SOURCE));
     return m;
 }
 
@@ -400,109 +403,111 @@ static void add_rates(struct generator *g)
     static const char *const skip[] = {"exposure", "per", "events", NULL};
     static const char *const per[] = {"section a", "km a", "a", "bay h"};
     static const char *const amounts[] = {"8 section", "14 km", "3", "40 bay"};
-    struct node *section = map(g);
+    struct node *section = make_map(g);
     for (size_t i = 0; i < g->ids[KIND_RATE].n; i++) {
-        struct node *m = map(g);
-        unsigned k = draw(g, 0, 3);
+        struct node *m = make_map(g);
+        unsigned k = random_draw(g, 0, 3);
         *array_push(g->arena, &g->rate_per) = per[k];
-        add_text(g, m, "per", per[k]);
+        put_text(g, m, "per", per[k]);
         const char *is = arena_printf(g->arena, "%s per %s", random_number(g, 1e-3, 0.3), per[k]);
-        if (chance(g, 2))
-            add(g, m, "prior", usable_prior(g, per[k]));
-        else if (chance(g, 2))
-            add_text(g, m, "is", is);
+        if (random_chance(g, 2))
+            put_node(g, m, "prior", usable_prior(g, per[k]));
+        else if (random_chance(g, 2))
+            put_text(g, m, "is", is);
         else
-            add(g, m, "is", two_parts(g, "median", is, "error-factor", random_number(g, 1.3, 9)));
-        if (g->shape.stored && chance(g, 3)) {
+            put_node(g, m, "is",
+                     two_parts(g, "median", is, "error-factor", random_number(g, 1.3, 9)));
+        if (g->shape.stored && random_chance(g, 3)) {
             struct node *stretch = two_parts(g, "from", "2012-01-01", "amount", amounts[k]);
-            if (chance(g, 2))
-                add_text(g, stretch, "to", "2019-12-31");
-            add_text(g, m, "events", arena_printf(g->arena, "%u", draw(g, 0, 12)));
-            add(g, m, "exposure", pair_of(g, "first", stretch));
+            if (random_chance(g, 2))
+                put_text(g, stretch, "to", "2019-12-31");
+            put_text(g, m, "events", arena_printf(g->arena, "%u", random_draw(g, 0, 12)));
+            put_node(g, m, "exposure", make_pair(g, "first", stretch));
         }
-        fill(g, m, kinds[KIND_RATE].table, skip);
-        add(g, section, g->ids[KIND_RATE].at[i], m);
+        fill_fields(g, m, kinds[KIND_RATE].table, skip);
+        put_node(g, section, g->ids[KIND_RATE].at[i], m);
     }
-    add(g, g->root, "rates", section);
+    put_node(g, g->root, "rates", section);
 }
 
 static void add_types(struct generator *g)
 {
-    struct node *section = map(g);
+    struct node *section = make_map(g);
     for (size_t i = 0; i < g->ids[KIND_TYPE].n; i++) {
-        struct node *m = pair_of(g, "per-demand", random_record(g));
-        fill(g, m, kinds[KIND_TYPE].table, NULL);
-        add(g, section, g->ids[KIND_TYPE].at[i], m);
+        struct node *m = make_pair(g, "per-demand", random_record(g));
+        fill_fields(g, m, kinds[KIND_TYPE].table, NULL);
+        put_node(g, section, g->ids[KIND_TYPE].at[i], m);
     }
-    add(g, g->root, "types", section);
+    put_node(g, g->root, "types", section);
 }
 
 static void add_elements(struct generator *g)
 {
     static const char *const skip[] = {"type", "per-demand", NULL};
-    struct node *section = map(g);
+    struct node *section = make_map(g);
     struct ids all = g->ids[KIND_ELEMENT];
     g->ids[KIND_ELEMENT] = (struct ids){0}; /* each is known once it is there */
     for (size_t i = 0; i < all.n; i++) {
-        struct node *m = map(g);
-        if (g->ids[KIND_TYPE].n && chance(g, 3)) {
-            add_text(g, m, "type", random_id(g, KIND_TYPE));
+        struct node *m = make_map(g);
+        if (g->ids[KIND_TYPE].n && random_chance(g, 3)) {
+            put_text(g, m, "type", random_id(g, KIND_TYPE));
         } else {
             struct node *record = random_record(g);
-            add(g, m, "per-demand", record);
+            put_node(g, m, "per-demand", record);
             bool plain = record->type == NODE_SCALAR || node_get(record, "is");
             if (plain)
                 *array_push(g->arena, &g->own) = all.at[i];
         }
-        fill(g, m, kinds[KIND_ELEMENT].table, skip);
-        add(g, section, all.at[i], m);
+        fill_fields(g, m, kinds[KIND_ELEMENT].table, skip);
+        put_node(g, section, all.at[i], m);
         *array_push(g->arena, &g->ids[KIND_ELEMENT]) = all.at[i];
     }
-    add(g, g->root, "elements", section);
+    put_node(g, g->root, "elements", section);
 }
 
 static void add_schemes(struct generator *g)
 {
     static const char *const skip[] = {"works", "trips-on", NULL};
-    struct node *section = map(g);
+    struct node *section = make_map(g);
     struct ids all = g->ids[KIND_SCHEME];
     g->ids[KIND_SCHEME] = (struct ids){0};
     for (unsigned i = 0; i < all.n; i++) {
         bool absent = i % 4 == 2;
-        struct node *works = absent ? scalar(g, "absent") : random_structure(g, i, g->shape.depth);
-        struct node *m = pair_of(g, "works", works);
+        struct node *works =
+            absent ? make_scalar(g, "absent") : random_structure(g, i, g->shape.depth);
+        struct node *m = make_pair(g, "works", works);
         if (absent)
             *array_push(g->arena, &g->absent) = all.at[i];
-        fill(g, m, kinds[KIND_SCHEME].table, skip);
-        if (g->shape.stored && chance(g, 5))
-            add(g, m, "trips-on", random_structure(g, i, 1));
-        bool is_short = m->n == 1 && chance(g, 2);
-        add(g, section, all.at[i], is_short ? works : m);
+        fill_fields(g, m, kinds[KIND_SCHEME].table, skip);
+        if (g->shape.stored && random_chance(g, 5))
+            put_node(g, m, "trips-on", random_structure(g, i, 1));
+        bool is_short = m->n == 1 && random_chance(g, 2);
+        put_node(g, section, all.at[i], is_short ? works : m);
         *array_push(g->arena, &g->ids[KIND_SCHEME]) = all.at[i];
     }
-    add(g, g->root, "schemes", section);
+    put_node(g, g->root, "schemes", section);
 }
 
 static void add_decisions(struct generator *g)
 {
-    static const char *const skip[] = {"options", "choose", "subtrees", "every", "sees", "focus",
-                                       NULL};
-    struct node *section = map(g);
+    static const char *const skip[] = {"options", "choose", "subtrees", "every",
+                                       "sees",    "focus",  NULL};
+    struct node *section = make_map(g);
     for (size_t i = 0; i < g->ids[KIND_DECISION].n; i++) {
-        struct node *m = map(g), *options = list(g);
+        struct node *m = make_map(g), *options = make_list(g);
         size_t n = g->ids[KIND_OPTION].n, from = n ? random_index(&g->random, n) : 0;
         for (size_t k = 0; k < n && k < 4; k++)
-            node_push(g->arena, options, scalar(g, g->ids[KIND_OPTION].at[(from + k) % n]));
-        add(g, m, "options", options);
-        if (g->ids[KIND_HAZARD].n && chance(g, 2)) {
-            struct node *focus = list(g);
-            node_push(g->arena, focus, scalar(g, random_id(g, KIND_HAZARD)));
-            add(g, m, "focus", focus);
+            node_push(g->arena, options, make_scalar(g, g->ids[KIND_OPTION].at[(from + k) % n]));
+        put_node(g, m, "options", options);
+        if (g->ids[KIND_HAZARD].n && random_chance(g, 2)) {
+            struct node *focus = make_list(g);
+            node_push(g->arena, focus, make_scalar(g, random_id(g, KIND_HAZARD)));
+            put_node(g, m, "focus", focus);
         }
-        fill(g, m, kinds[KIND_DECISION].table, skip);
-        add(g, section, g->ids[KIND_DECISION].at[i], m);
+        fill_fields(g, m, kinds[KIND_DECISION].table, skip);
+        put_node(g, section, g->ids[KIND_DECISION].at[i], m);
     }
-    add(g, g->root, "decisions", section);
+    put_node(g, g->root, "decisions", section);
 }
 
 static void name_all(struct generator *g, const struct register_shape *s)
@@ -524,7 +529,7 @@ struct node *random_register(struct arena *a, uint64_t seed, const struct regist
 {
     struct generator generator = {.arena = a, .random = random_seed(seed), .shape = *shape};
     struct generator *g = &generator;
-    g->root = map(g);
+    g->root = make_map(g);
     name_all(g, shape);
     struct ids elements = g->ids[KIND_ELEMENT], hazards = g->ids[KIND_HAZARD];
     g->ids[KIND_ELEMENT].n = 0; /* expressions name elements and hazards once they are there */
@@ -540,10 +545,10 @@ struct node *random_register(struct arena *a, uint64_t seed, const struct regist
     add_elements(g);
     add_schemes(g);
     g->ids[KIND_HAZARD] = hazards;
-    add_hazards(g);
-    add_options(g);
+    registers_add_hazards(g);
+    registers_add_options(g);
     add_decisions(g);
     if (shape->stored)
-        add_stored(g);
+        registers_add_stored(g);
     return g->root;
 }

@@ -8,7 +8,7 @@
 
 struct ids ARRAY_BODY(const char *);
 
-/* A named value: what it is, and whether it is a certain number. */
+/* A named value and its dimension. */
 struct known_value {
     const char *id;
     enum field_dim dim;
@@ -29,8 +29,8 @@ struct generator {
 /* --- drawing --- */
 
 /* One chance in n. */
-bool chance(struct generator *g, unsigned n);
-unsigned draw(struct generator *g, unsigned low, unsigned high);
+bool random_chance(struct generator *g, unsigned n);
+unsigned random_draw(struct generator *g, unsigned low, unsigned high);
 /* Three digits, evenly in the logarithm; lo > 0. */
 const char *random_number(struct generator *g, double lo, double hi);
 const char *random_text(struct generator *g);
@@ -38,17 +38,17 @@ const char *random_date(struct generator *g);
 /* One of the ids of a kind; one of those near `around` (a number of an object) where
  * there are many, so that large registers fall into neighbourhoods. */
 const char *random_id(struct generator *g, enum kind kind);
-const char *near_id(struct generator *g, enum kind kind, unsigned around, unsigned width);
+const char *random_near_id(struct generator *g, enum kind kind, unsigned around, unsigned width);
 
 /* --- nodes --- */
 
-struct node *scalar(struct generator *g, const char *text);
-struct node *map(struct generator *g);
-struct node *list(struct generator *g);
-void add(struct generator *g, struct node *m, const char *key, struct node *value);
-void add_text(struct generator *g, struct node *m, const char *key, const char *text);
+struct node *make_scalar(struct generator *g, const char *text);
+struct node *make_map(struct generator *g);
+struct node *make_list(struct generator *g);
+void put_node(struct generator *g, struct node *m, const char *key, struct node *value);
+void put_text(struct generator *g, struct node *m, const char *key, const char *text);
 /* {key: value} */
-struct node *pair_of(struct generator *g, const char *key, struct node *value);
+struct node *make_pair(struct generator *g, const char *key, struct node *value);
 
 /* --- quantities --- */
 
@@ -63,19 +63,17 @@ struct node *random_quantity(struct generator *g, enum field_dim dim);
 
 /* Adds what the table requires and what chance wants of the rest, but no key of a group
  * and none of `skip` (NULL-terminated). */
-void fill(struct generator *g, struct node *m, const struct table *t, const char *const *skip);
+void fill_fields(struct generator *g, struct node *m, const struct table *t,
+                 const char *const *skip);
 /* A probability of failure on demand that can be evaluated. */
 struct node *random_record(struct generator *g);
 /* A structure over the elements and the earlier schemes around number `around`. */
 struct node *random_structure(struct generator *g, unsigned around, unsigned depth);
-void add_states(struct generator *g);
-void add_plans(struct generator *g);
-void add_trees(struct generator *g);
-void add_stored(struct generator *g);
+void registers_add_stored(struct generator *g);
 
 /* --- hazards and options (registers_hazard.c) --- */
 
-void add_hazards(struct generator *g);
-void add_options(struct generator *g);
+void registers_add_hazards(struct generator *g);
+void registers_add_options(struct generator *g);
 
 #endif

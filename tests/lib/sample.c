@@ -43,10 +43,11 @@ const char *sample_body(struct arena *a, enum kind kind, unsigned n)
 {
     switch (kind) {
     case KIND_REGISTER:
-        return arena_printf(a,
-                            "{\"counts\":[\"bay\"],\"currency\":\"EUR\",\"discount\":\"4 %% per a\","
-                            "\"horizon\":\"%u a\",\"prices\":2026,\"title\":\"Quay network\"}",
-                            n + 20);
+        return arena_printf(
+            a,
+            "{\"counts\":[\"bay\"],\"currency\":\"EUR\",\"discount\":\"4 %% per a\","
+            "\"horizon\":\"%u a\",\"prices\":2026,\"title\":\"Quay network\"}",
+            n + 20);
     case KIND_SITE:
         return arena_printf(a, "{\"customers\":%u,\"name\":\"Station %u\"}", 100 + n, n);
     case KIND_VALUE:
@@ -58,8 +59,9 @@ const char *sample_body(struct arena *a, enum kind kind, unsigned n)
                             "\"2017-09-20\"}}",
                             n, n % 90 + 1);
     case KIND_SCHEME:
-        return arena_printf(a, "{\"name\":\"Scheme %u\",\"works\":[\"all\",\"E-1\",[\"any\",\"E-1\","
-                               "\"E-2\"]]}",
+        return arena_printf(a,
+                            "{\"name\":\"Scheme %u\",\"works\":[\"all\",\"E-1\",[\"any\",\"E-1\","
+                            "\"E-2\"]]}",
                             n);
     case KIND_HAZARD:
         return arena_printf(
@@ -68,7 +70,8 @@ const char *sample_body(struct arena *a, enum kind kind, unsigned n)
             "\"rebuild\":{\"category\":\"equipment\",\"is\":\"%u kEUR\"}},\"name\":\"Burnt out\"},"
             "\"slow\":{\"name\":\"Cleared late\"}},\"response\":{\"main\":{\"cleared-by\":\"C-1\","
             "\"in\":\"1.1 s\",\"outcome\":\"slow\"},\"never\":{\"split\":{\"fire\":{\"outcome\":"
-            "\"burnt\",\"share\":\"20 %%\"},\"no-fire\":{\"outcome\":\"slow\",\"share\":\"rest\"}}}},"
+            "\"burnt\",\"share\":\"20 "
+            "%%\"},\"no-fire\":{\"outcome\":\"slow\",\"share\":\"rest\"}}}},"
             "\"site\":\"S-1\"}",
             n, n + 40);
     case KIND_OPTION:
@@ -77,12 +80,12 @@ const char *sample_body(struct arena *a, enum kind kind, unsigned n)
                             "\"invest\":{\"is\":\"%u kEUR\"},\"name\":\"Fit a relay\"}",
                             n + 140);
     case KIND_DECISION:
-        return arena_printf(a,
-                            "{\"choose\":{\"keep\":[],\"renew\":[{\"pay\":\"%u kEUR\"},{\"choose\":{"
-                            "\"now\":[{\"apply\":\"P-1\"}],\"wait\":[]}}]},\"question\":\"When?\"}",
-                            n + 1);
-    default:
-        abort(); /* the samples have no such kind */
+        return arena_printf(
+            a,
+            "{\"choose\":{\"keep\":[],\"renew\":[{\"pay\":\"%u kEUR\"},{\"choose\":{"
+            "\"now\":[{\"apply\":\"P-1\"}],\"wait\":[]}}]},\"question\":\"When?\"}",
+            n + 1);
+    default: abort(); /* the samples have no such kind */
     }
 }
 

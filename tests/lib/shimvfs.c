@@ -309,9 +309,15 @@ void shim_install(struct shim *s, const char *name, enum shim_way way, size_t fa
     sqlite3_vfs_register(&s->vfs, 0);
 }
 
+void shim_for_all(struct shim *s)
+{
+    sqlite3_vfs_register(&s->vfs, 1);
+}
+
 void shim_remove(struct shim *s)
 {
     sqlite3_vfs_unregister(&s->vfs);
+    sqlite3_vfs_register(s->below, 1);
     while (s->images) {
         struct shim_image *next = s->images->next;
         free_image(s->images);

@@ -46,8 +46,8 @@ struct shim {
     sqlite3_vfs *below;
     enum shim_way way;
     size_t fail_at;
-    size_t operations; /* so far */
-    bool struck;       /* the operation was reached */
+    size_t operations;                              /* so far */
+    bool struck;                                    /* the operation was reached */
     void (*on_operation)(void *ctx, size_t number); /* called before each; may be NULL */
     void *ctx;
     struct shim_image *images;
@@ -55,6 +55,9 @@ struct shim {
 
 /* Registers it under `name` (borrowed). `s` must not move until shim_remove. */
 void shim_install(struct shim *s, const char *name, enum shim_way way, size_t fail_at);
+
+/* Makes it the file system of whoever names none, until shim_remove. */
+void shim_for_all(struct shim *s);
 
 /* Puts all files that were written through it into a state that a power cut may leave:
  * what was synced, and of the 512-byte sectors written since a random subset (seed 0:

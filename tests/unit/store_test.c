@@ -6,6 +6,9 @@
 #include <stdlib.h>
 #include <string.h>
 
+#include "base/file.h"
+#include "store/projection.h"
+
 struct arena *test_arena(void)
 {
     struct arena *a = arena_new(NULL);
@@ -107,13 +110,29 @@ void test_tamper(const char *path, const char *sql)
 
 const char *test_source;
 
+/* Writes schema/derived.sql as the program makes the tables now. */
+static int accept_derived(void)
+{
+    struct arena *a = test_arena();
+    ohmen_error e = OHMEN_ERROR_INIT;
+    const char *text = projection_text(a);
+    const char *name = arena_printf(a, "%s/schema/derived.sql", test_source);
+    ohmen_status status = file_write(name, text, strlen(text), &e);
+    if (status != OHMEN_OK)
+        fprintf(stderr, "%s\n", e.text);
+    arena_free(a);
+    return status == OHMEN_OK ? EXIT_SUCCESS : EXIT_FAILURE;
+}
+
 int main(int argc, char **argv)
 {
-    if (argc != 2) {
-        fputs("usage: store_test SOURCE-FOLDER\n", stderr);
+    if (argc < 2) {
+        fputs("usage: store_test SOURCE-FOLDER [accept]\n", stderr);
         return EXIT_FAILURE;
     }
     test_source = argv[1];
+    if (argc == 3 && strcmp(argv[2], "accept") == 0)
+        return accept_derived();
     Suite *suite = suite_create("store");
     store_write_tests(suite);
     store_read_tests(suite);

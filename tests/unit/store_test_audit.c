@@ -24,10 +24,9 @@ static void write_entry_2(struct arena *a, const struct base *b)
     char digest[STORE_HASH_TEXT], hash[STORE_HASH_TEXT];
     ohmen_error e = OHMEN_ERROR_INIT;
     struct journal_entry n = {0};
-    run(b->db,
-        "INSERT INTO withdrawal VALUES(1, 2, 2);"
-        "INSERT INTO record VALUES('R-1', 2, '{\"a\":1}', '{\"b\":2}', 'text', NULL);"
-        "INSERT INTO record VALUES('R-2', 2, '{\"a\":2}', '{\"b\":3}', 'more', 'R-1')");
+    run(b->db, "INSERT INTO withdrawal VALUES(1, 2, 2);"
+               "INSERT INTO record VALUES('R-1', 2, '{\"a\":1}', '{\"b\":2}', 'text', NULL);"
+               "INSERT INTO record VALUES('R-2', 2, '{\"a\":2}', '{\"b\":3}', 'more', 'R-1')");
     MUST(journal_digest(b, a, 2, &n, digest, &e), &e);
     struct query q = query_new(b, "SELECT hash FROM entry WHERE seq = 1", &e);
     ck_assert(query_row(&q));
@@ -38,10 +37,11 @@ static void write_entry_2(struct arena *a, const struct base *b)
     n.author = n.reason = n.command = n.tool = "x";
     n.digest = digest;
     journal_entry_hash(a, &n, hash);
-    run(b->db, arena_printf(a,
-                            "INSERT INTO entry VALUES(2, 1767323999, 'x', 'x', 'x', 'x', 0, 0, 1, 2,"
-                            " '%s', '%s', '%s')",
-                            digest, n.prev, hash));
+    run(b->db,
+        arena_printf(a,
+                     "INSERT INTO entry VALUES(2, 1767323999, 'x', 'x', 'x', 'x', 0, 0, 1, 2,"
+                     " '%s', '%s', '%s')",
+                     digest, n.prev, hash));
 }
 
 /* Two rows each; the hash of the first is the second's prev. */
@@ -127,9 +127,8 @@ static const char *change_sql(struct arena *a, const char *table, const char *co
         "WHEN 'null' THEN %s ELSE substr(\"%s\", 1, length(\"%s\") - 1) || "
         "char(unicode(substr('0' || \"%s\", -1)) + 5) END "
         "WHERE %s = (SELECT %s FROM \"%s\" ORDER BY %s LIMIT 1 OFFSET %d)",
-        table, column, column, column,
-        strcmp(table, "withdrawal") == 0 ? "2" : "'R-1'", column, column, column, key, key, table,
-        key, row);
+        table, column, column, column, strcmp(table, "withdrawal") == 0 ? "2" : "'R-1'", column,
+        column, column, key, key, table, key, row);
 }
 
 struct columns ARRAY_BODY(const char *);
@@ -152,9 +151,9 @@ START_TEST(every_column_is_under_a_hash)
 {
     static const struct {
         const char *table, *words;
-    } all[] = {{"meta", "meta"},      {"entry", "entry"},       {"body", "body"},
-               {"version", "entry"},  {"observation", "entry"}, {"withdrawal", "entry"},
-               {"record", "entry"},   {"signature", "signature"}, {"seal", "seal"}};
+    } all[] = {{"meta", "meta"},     {"entry", "entry"},         {"body", "body"},
+               {"version", "entry"}, {"observation", "entry"},   {"withdrawal", "entry"},
+               {"record", "entry"},  {"signature", "signature"}, {"seal", "seal"}};
     struct arena *a = test_arena();
     char *bytes;
     size_t n, changes = 0;
@@ -201,7 +200,8 @@ START_TEST(rows_that_come_and_go_are_found)
          "FROM observation LIMIT 1",
          "belongs to entry 9"},
         {"UPDATE body SET json = json || char(0) || 'x' WHERE kind = 'site'", "zero byte"},
-        {"UPDATE version SET kind = 'sight' WHERE id = 'S-1'", "a kind \"sight\" that there is not"},
+        {"UPDATE version SET kind = 'sight' WHERE id = 'S-1'",
+         "a kind \"sight\" that there is not"},
     };
     struct arena *a = test_arena();
     char *bytes;
@@ -224,11 +224,12 @@ START_TEST(tampered_derived_rows_are_named)
     static const struct {
         const char *sql, *words;
     } all[] = {
-        {"UPDATE site SET name = 'Station 8'",
-         "derived table site, S-1, field name: it holds \"Station 8\", the bodies make \"Station 7\""},
+        {"UPDATE site SET name = 'Station 8'", "derived table site, S-1, field name: it holds "
+                                               "\"Station 8\", the bodies make \"Station 7\""},
         {"UPDATE damage SET \"is\" = '1 kEUR'",
          "derived table damage, H-1, outcomes/burnt/damage/rebuild, field is"},
-        {"DELETE FROM outcome WHERE key = 'slow'", "outcome: the row H-1, outcomes/slow is missing"},
+        {"DELETE FROM outcome WHERE key = 'slow'",
+         "outcome: the row H-1, outcomes/slow is missing"},
         {"INSERT INTO object VALUES('site', 'S-8', 1, '00')", "the row site, S-8 does not follow"},
         {"UPDATE snapshot SET seq = 2 WHERE id = 'E-1'", "snapshot, 1, element, E-1, field seq"},
         {"UPDATE reference SET trace = 0 WHERE \"to\" = 'S-1'", "S-1, field trace"},
@@ -322,7 +323,7 @@ END_TEST
 void store_audit_tests(Suite *suite)
 {
     TCase *tc = tcase_create("audit");
-    tcase_set_timeout(tc, 300);
+    tcase_set_timeout(tc, 600);
     tcase_add_test(tc, every_column_is_under_a_hash);
     tcase_add_test(tc, rows_that_come_and_go_are_found);
     tcase_add_test(tc, tampered_derived_rows_are_named);

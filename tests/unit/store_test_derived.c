@@ -75,8 +75,9 @@ static const char *dump_derived(struct arena *a, struct store *s)
     for (size_t i = 0; i < projection_n_fixed; i++)
         if (projection_fixed[i].n_key)
             text_printf(&t, "%s: %s\n", projection_fixed[i].name,
-                        answer(a, &s->base, arena_printf(a, "SELECT * FROM \"%s\" ORDER BY 1, 2, 3",
-                                                         projection_fixed[i].name)));
+                        answer(a, &s->base,
+                               arena_printf(a, "SELECT * FROM \"%s\" ORDER BY 1, 2, 3",
+                                            projection_fixed[i].name)));
     const struct projection *p = store_projection(s);
     for (size_t i = 0; i < p->relations.n; i++)
         text_printf(&t, "%s: %s\n", p->relations.at[i]->name,
@@ -130,7 +131,8 @@ START_TEST(tables_of_another_version_are_replaced)
     struct store *s = test_register(a, &path);
     history_of_changes(a, s);
     const char *before = dump_derived(a, s);
-    test_tamper(path, "DROP TABLE damage; CREATE TABLE damage(old TEXT); CREATE TABLE older(x TEXT)");
+    test_tamper(path,
+                "DROP TABLE damage; CREATE TABLE damage(old TEXT); CREATE TABLE older(x TEXT)");
     struct store *other = test_open(a, path, STORE_WRITE);
     ck_assert(test_finds(other, "not laid out"));
     struct sample t;
@@ -146,6 +148,33 @@ START_TEST(tables_of_another_version_are_replaced)
 }
 END_TEST
 
+/* Another wording of a help text is no other layout; another column is. */
+START_TEST(comments_are_no_layout)
+{
+    struct arena *a = test_arena();
+    const char *path;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    bool ours = false;
+    struct store *s = test_register(a, &path);
+    const char *sql = projection_sql(a, store_projection(s)->of[KIND_SITE]);
+    const char *word = strstr(sql, "Name of the place");
+    ck_assert_ptr_nonnull(word);
+    const char *other = arena_printf(a, "%.*sWhat it is called%s", (int)(word - sql), sql,
+                                     word + strlen("Name of the place"));
+    const char *kept = "CREATE TABLE kept AS SELECT * FROM site; DROP TABLE site;";
+    test_tamper(path, arena_printf(a, "%s %s; INSERT INTO site SELECT * FROM kept; DROP TABLE kept",
+                                   kept, other));
+    MUST(rebuild_layout_is_ours(s, &ours, &e), &e);
+    ck_assert(ours);
+    test_is_sound(s);
+    test_tamper(path, "ALTER TABLE site ADD COLUMN more TEXT");
+    MUST(rebuild_layout_is_ours(s, &ours, &e), &e);
+    ck_assert(!ours);
+    arena_free(a);
+}
+END_TEST
+
+/* After a change of the field tables: store_test SOURCE-FOLDER accept. */
 START_TEST(the_shown_text_is_true)
 {
     struct arena *a = test_arena();
@@ -190,6 +219,7 @@ void store_derived_tests(Suite *suite)
     tcase_add_test(tc, one_select_answers);
     tcase_add_test(tc, rebuilt_tables_are_equal);
     tcase_add_test(tc, tables_of_another_version_are_replaced);
+    tcase_add_test(tc, comments_are_no_layout);
     tcase_add_test(tc, the_shown_text_is_true);
     tcase_add_test(tc, each_relation_has_its_name);
     suite_add_tcase(suite, tc);

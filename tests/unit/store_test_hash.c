@@ -68,9 +68,8 @@ static const char *quoted(struct arena *a, const char *s)
 
 static const char *body_by_hand(struct arena *a, const struct store_object *o)
 {
-    const char *preimage =
-        arena_printf(a, "ohmen body 1\nkind \"%s\"\nformat 1\nbytes %zu\n%s", kinds[o->kind].name,
-                     strlen(o->json), o->json);
+    const char *preimage = arena_printf(a, "ohmen body 1\nkind \"%s\"\nformat 1\nbytes %zu\n%s",
+                                        kinds[o->kind].name, strlen(o->json), o->json);
     return b2sum(a, preimage, strlen(preimage));
 }
 

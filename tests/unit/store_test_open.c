@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Opening: what is refused, with which sentence; places that cannot be written. */
+#include <errno.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
@@ -90,6 +91,43 @@ START_TEST(a_missing_trigger_is_damage)
 }
 END_TEST
 
+/* Every table, index and trigger of schema/register.sql, one after the other. */
+START_TEST(each_enduring_object_is_missed)
+{
+    struct arena *a = test_arena();
+    char *sql;
+    size_t n, objects = 0;
+    sqlite3 *db;
+    sqlite3_stmt *q;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    MUST(
+        file_read(a, arena_printf(a, "%s/schema/register.sql", test_source), 1 << 20, &sql, &n, &e),
+        &e);
+    ck_assert_int_eq(sqlite3_open(":memory:", &db), SQLITE_OK);
+    ck_assert_int_eq(sqlite3_exec(db, sql, NULL, NULL, NULL), SQLITE_OK);
+    ck_assert_int_eq(
+        sqlite3_prepare_v2(db, "SELECT type, name FROM sqlite_schema WHERE sql IS NOT NULL", -1, &q,
+                           NULL),
+        SQLITE_OK);
+    for (; sqlite3_step(q) == SQLITE_ROW; objects++) {
+        sqlite3 *file;
+        const char *type = (const char *)sqlite3_column_text(q, 0);
+        const char *name = (const char *)sqlite3_column_text(q, 1);
+        const char *path = test_path(a, "quay.ohmen");
+        MUST(store_create(path, &e), &e);
+        ck_assert_int_eq(sqlite3_open(path, &file), SQLITE_OK);
+        const char *drop = arena_printf(a, "DROP %s %s", type, name);
+        ck_assert_int_eq(sqlite3_exec(file, drop, NULL, NULL, NULL), SQLITE_OK);
+        sqlite3_close(file);
+        refused(a, path, STORE_READ, OHMEN_REGISTER, name);
+    }
+    ck_assert_uint_eq(objects, 9 + 5 + 18);
+    sqlite3_finalize(q);
+    sqlite3_close(db);
+    arena_free(a);
+}
+END_TEST
+
 START_TEST(a_name_that_is_taken_is_refused)
 {
     struct arena *a = test_arena();
@@ -124,8 +162,9 @@ END_TEST
 /* The tables are append-only for everybody who opens the file. */
 START_TEST(enduring_tables_do_not_change)
 {
-    static const char *const tables[] = {"meta",       "entry",  "body",      "version", "observation",
-                                         "withdrawal", "record", "signature", "seal"};
+    static const char *const tables[] = {"meta",    "entry",       "body",
+                                         "version", "observation", "withdrawal",
+                                         "record",  "signature",   "seal"};
     struct arena *a = test_arena();
     const char *path;
     test_register(a, &path);
@@ -143,7 +182,8 @@ START_TEST(enduring_tables_do_not_change)
         if (i != 0 && i != 3) /* these two have no rowid */
             ck_assert_int_ne(sqlite3_exec(db, sql, NULL, NULL, NULL), SQLITE_OK);
     }
-    ck_assert_int_ne(sqlite3_exec(db, "UPDATE version SET body = NULL", NULL, NULL, NULL), SQLITE_OK);
+    ck_assert_int_ne(sqlite3_exec(db, "UPDATE version SET body = NULL", NULL, NULL, NULL),
+                     SQLITE_OK);
     ck_assert_int_ne(sqlite3_exec(db, "UPDATE meta SET value = ''", NULL, NULL, NULL), SQLITE_OK);
     sqlite3_close(db);
     arena_free(a);
@@ -252,6 +292,49 @@ START_TEST(an_unfinished_register_is_not_read_by_halves)
 }
 END_TEST
 
+/* A link to a register: the pages outside stand beside the file, not beside the link. */
+START_TEST(links_are_followed)
+{
+    struct arena *a = test_arena();
+    const char *path, *name = test_path(a, "link.ohmen");
+    ohmen_error e = OHMEN_ERROR_INIT;
+    test_register(a, &path);
+    ck_assert_int_eq(symlink(path, name), 0);
+    struct store *s = test_open(a, name, STORE_WRITE);
+    struct sample t;
+    uint64_t head;
+    sample_begin(&t, a, 1);
+    sample_change(&t, KIND_SITE, "S-1", 8);
+    ck_assert_uint_eq(test_commit(s, &t), 2);
+    MUST(store_head(test_open(a, path, STORE_READ), &head, &e), &e);
+    ck_assert_uint_eq(head, 2);
+    char real[4096];
+    ck_assert_ptr_nonnull(realpath(path, real));
+    ck_assert_str_eq(s->path, real);
+    arena_free(a);
+}
+END_TEST
+
+/* Where a file system has no links: the same promise by another way. */
+START_TEST(a_rename_replaces_nothing)
+{
+    struct arena *a = test_arena();
+    const char *part = test_path(a, "part"), *path = arena_printf(a, "%s-whole", part);
+    char *bytes;
+    size_t n;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    MUST(file_write(part, "new", 3, &e), &e);
+    ck_assert_int_eq(place_rename(part, path), 0);
+    MUST(file_read(a, path, 10, &bytes, &n, &e), &e);
+    ck_assert_str_eq(bytes, "new");
+    MUST(file_write(part, "newer", 5, &e), &e);
+    ck_assert_int_eq(place_rename(part, path), EEXIST);
+    MUST(file_read(a, path, 10, &bytes, &n, &e), &e);
+    ck_assert_str_eq(bytes, "new");
+    arena_free(a);
+}
+END_TEST
+
 START_TEST(reading_leaves_the_file_as_it_is)
 {
     struct arena *a = test_arena(), *writing = arena_child(a);
@@ -279,8 +362,8 @@ END_TEST
 START_TEST(shared_file_systems_are_known)
 {
     static const char *const shared[] = {"nfs", "nfs4", "cifs", "smb3", "fuse.sshfs", "9p"};
-    static const char *const local[] = {"ext4", "xfs", "btrfs", "tmpfs", "overlay", "fuseblk",
-                                        "zfs",  "vfat"};
+    static const char *const local[] = {"ext4",    "xfs",     "btrfs", "tmpfs",
+                                        "overlay", "fuseblk", "zfs",   "vfat"};
     for (size_t i = 0; i < sizeof shared / sizeof shared[0]; i++)
         ck_assert(place_is_network(shared[i]));
     for (size_t i = 0; i < sizeof local / sizeof local[0]; i++)
@@ -295,11 +378,14 @@ void store_open_tests(Suite *suite)
     tcase_add_test(tc, what_is_no_register_is_refused);
     tcase_add_test(tc, damage_and_other_versions_are_told);
     tcase_add_test(tc, a_missing_trigger_is_damage);
+    tcase_add_test(tc, each_enduring_object_is_missed);
     tcase_add_test(tc, a_name_that_is_taken_is_refused);
     tcase_add_test(tc, names_with_signs_are_names);
     tcase_add_test(tc, enduring_tables_do_not_change);
     tcase_add_test(tc, a_read_only_folder_can_be_read);
     tcase_add_test(tc, an_unfinished_register_is_not_read_by_halves);
+    tcase_add_test(tc, links_are_followed);
+    tcase_add_test(tc, a_rename_replaces_nothing);
     tcase_add_test(tc, reading_leaves_the_file_as_it_is);
     tcase_add_test(tc, shared_file_systems_are_known);
     suite_add_tcase(suite, tc);

@@ -213,8 +213,11 @@ START_TEST(withdrawn_observations_do_not_count)
     sample_begin(&t, a, 1);
     sample_observe(&t, "log-17b", 20000, "V-1");
     ck_assert_uint_eq(test_commit(s, &t), 2);
-    MUST(query_exec(&s->base, "INSERT INTO withdrawal(observation, seq, replaced_by) "
-                              "VALUES(1, 2, 3)", &e), &e);
+    MUST(query_exec(&s->base,
+                    "INSERT INTO withdrawal(observation, seq, replaced_by) "
+                    "VALUES(1, 2, 3)",
+                    &e),
+         &e);
     struct store_observations all = {0};
     MUST(store_state_observations(s, 1, &all, &e), &e);
     ck_assert_uint_eq(all.n, 2);

@@ -176,6 +176,11 @@ START_TEST(wrong_transactions_store_nothing)
         ck_assert_int_ne(try_commit(s, &t, &e), OHMEN_OK);
     }
     sample_begin(&t, a, 1);
+    sample_observe(&t, "log-20", 20000, "caf\xc3");
+    ck_assert_int_eq(try_commit(s, &t, &e), OHMEN_INPUT);
+    ck_assert_ptr_nonnull(strstr(e.text, "subject of an observation"));
+
+    sample_begin(&t, a, 1);
     sample_observe(&t, "log-20", DAY_NONE, "V-1");
     ck_assert_int_eq(try_commit(s, &t, &e), OHMEN_INTERNAL);
     uint64_t head;
@@ -228,6 +233,29 @@ START_TEST(objects_come_back_after_removal)
 }
 END_TEST
 
+/* A body that is there already under its hash, but was tampered with. */
+START_TEST(a_tampered_body_is_not_built_upon)
+{
+    struct arena *a = test_arena();
+    const char *path;
+    ohmen_error e;
+    struct store *s = test_register(a, &path);
+    struct sample t;
+    sample_begin(&t, a, 1);
+    sample_remove(&t, KIND_SITE, "S-1");
+    ck_assert_uint_eq(test_commit(s, &t), 2);
+    test_tamper(path, "UPDATE body SET json = replace(json, '107', '108') WHERE kind = 'site'");
+    sample_begin(&t, a, 2);
+    sample_change(&t, KIND_SITE, "S-1", 7);
+    ck_assert_int_eq(try_commit(s, &t, &e), OHMEN_REGISTER);
+    ck_assert_ptr_nonnull(strstr(e.text, "the body of site S-1"));
+    uint64_t head;
+    MUST(store_head(s, &head, &e), &e);
+    ck_assert_uint_eq(head, 2);
+    arena_free(a);
+}
+END_TEST
+
 void store_write_tests(Suite *suite)
 {
     TCase *tc = tcase_create("write");
@@ -240,5 +268,6 @@ void store_write_tests(Suite *suite)
     tcase_add_test(tc, wrong_transactions_store_nothing);
     tcase_add_test(tc, a_reader_does_not_write);
     tcase_add_test(tc, objects_come_back_after_removal);
+    tcase_add_test(tc, a_tampered_body_is_not_built_upon);
     suite_add_tcase(suite, tc);
 }
