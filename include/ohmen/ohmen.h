@@ -54,6 +54,12 @@ ohmen_status ohmen_create(const char *path, ohmen_error *e);
 ohmen_status ohmen_open(const char *path, ohmen_mode mode, ohmen_register **out, ohmen_error *e);
 void ohmen_close(ohmen_register *r);
 
+/* Called now and then during long calls on a register, from the same thread: `done` of
+ * `total` steps of a phase ("reading", "checking", "computing", "storing"). Must not call
+ * the library. The time between two calls is not bounded. */
+typedef void ohmen_progress(void *ctx, const char *phase, size_t done, size_t total);
+void ohmen_watch(ohmen_register *r, ohmen_progress *progress, void *ctx);
+
 /* --- reports --- */
 
 typedef struct ohmen_report ohmen_report;
@@ -83,7 +89,8 @@ typedef struct ohmen_query {
                                 day, UTC) or a UTC second; NULL: the newest */
     const char *perspective; /* whose damage counts; NULL: the register's own choice, "all":
                                 every category */
-    const char *site;        /* only hazards at this site and the sites in it; NULL: all */
+    const char *site;        /* only hazards (of a list: objects) at this site and the sites in
+                                it; NULL: all. A decision is about all hazards that it reaches */
 } ohmen_query;
 ohmen_query ohmen_query_defaults(void);
 

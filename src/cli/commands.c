@@ -113,9 +113,10 @@ const struct command commands[] = {
     {"weigh",
      JOB_DECIDE,
      {"DECISION", 1, 1, "the decision, such as D-VH-BUS"},
-     .options = READING_HAZARDS,
+     .options = READING,
      .brief = "the options of a decision against doing nothing",
-     .text = "Weighs the options of a decision, and their combinations, against doing nothing.",
+     .text = "Weighs the options of a decision, and their combinations, against doing nothing, "
+             "over every hazard that one of them reaches.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
     {"explain",

@@ -8,10 +8,13 @@
 
 #include "cli/args.h"
 
-/* One run of a command: what was asked for, and how text is to look. */
+struct progress;
+
+/* One run of a command: what was asked for, how text is to look, and the progress line. */
 struct call {
     const struct args *args;
     ohmen_layout layout;
+    struct progress *progress;
 };
 
 /* Commands are listed by the job that they serve. */

@@ -7,6 +7,7 @@
 #include <unistd.h>
 
 #include "cli/message.h"
+#include "cli/progress.h"
 #include "cli/reading.h"
 
 /* Who changes the register: --by, OHMEN_AUTHOR, the login name; NULL: unknown. */
@@ -64,6 +65,7 @@ ohmen_status command_import(const struct call *call, ohmen_error *e)
         status = reading_open(call, settings.dry_run ? OHMEN_READ : OHMEN_WRITE, &reg, e);
     if (status == OHMEN_OK)
         status = ohmen_import(reg, &settings, &report, e);
+    progress_end(call->progress);
     if (report)
         status = print(call, report, status, e);
     ohmen_report_free(report);

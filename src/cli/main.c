@@ -10,6 +10,7 @@
 #include "cli/layout.h"
 #include "cli/message.h"
 #include "cli/output.h"
+#include "cli/progress.h"
 
 static void print_commands(void)
 {
@@ -63,8 +64,11 @@ int main(int argc, char **argv)
     struct args args;
     output_guard_streams();
     args_parse(argc, argv, &args, &error);
-    struct call call = {.args = &args, .layout = layout_choose(&args)};
+    struct progress progress;
+    progress_begin(&progress);
+    struct call call = {.args = &args, .layout = layout_choose(&args), .progress = &progress};
     ohmen_status status = run(&call, &error);
+    progress_end(&progress);
     ohmen_status written = output_finish(&error);
     if (status == OHMEN_OK)
         status = written;

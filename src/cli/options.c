@@ -30,7 +30,8 @@ const struct option options[OPTION_COUNT] = {
                             .help = "whose damage counts: a perspective of the register, or all "
                                     "for every category; else the register's own choice"},
     [OPTION_SITE] = {"site", 0, VALUE_TEXT, "ID",
-                     .help = "only the hazards at this site and at the sites in it"},
+                     .help = "only the hazards (of a list: the objects) at this site and at the "
+                             "sites in it"},
     [OPTION_WHY] = {"why", 0, VALUE_TEXT, "TEXT",
                     .help = "the reason of the change, kept in the journal"},
     [OPTION_BY] = {"by", 0, VALUE_TEXT, "TEXT",

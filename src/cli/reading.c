@@ -7,6 +7,7 @@
 #include "cli/locate.h"
 #include "cli/message.h"
 #include "cli/output.h"
+#include "cli/progress.h"
 
 typedef ohmen_status maker(ohmen_register *r, const struct args *args, ohmen_report **out,
                            ohmen_error *e);
@@ -26,7 +27,11 @@ ohmen_status reading_open(const struct call *call, ohmen_mode mode, ohmen_regist
     char found[LOCATE_NAME];
     const char *path = NULL;
     ohmen_status status = locate_register(call->args, found, &path, e);
-    return status == OHMEN_OK ? ohmen_open(path, mode, out, e) : status;
+    if (status == OHMEN_OK)
+        status = ohmen_open(path, mode, out, e);
+    if (status == OHMEN_OK)
+        ohmen_watch(*out, progress_show, call->progress);
+    return status;
 }
 
 ohmen_status reading_print(const struct call *call, ohmen_report *report, ohmen_error *e)
@@ -56,6 +61,7 @@ static ohmen_status read_and_print(const struct call *call, maker *make, ohmen_e
     ohmen_status status = reading_open(call, OHMEN_READ, &reg, e);
     if (status == OHMEN_OK)
         status = make(reg, call->args, &report, e);
+    progress_end(call->progress);
     if (report) {
         ohmen_status printed = reading_print(call, report, e);
         reading_tell(call, report);

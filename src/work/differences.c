@@ -7,44 +7,36 @@
 enum { BRIEF = 120 };
 
 struct block *part_difference_table(struct job *j, const char *key, const char *title,
-                                    const char *lead)
+                                    const char *lead_key, const char *lead_head)
 {
     struct report *r = j->report;
     struct block *b = report_table(r, key, title);
-    if (lead)
-        block_column(r, b, "entry", lead, "", STYLE_PLAIN);
-    block_column(r, b, "object", "Object", "", STYLE_PLAIN);
+    block_column(r, b, lead_key, lead_head, "", STYLE_PLAIN);
     block_column(r, b, "field", "Field", "", STYLE_PLAIN);
     block_column(r, b, "before", "Before", "", STYLE_PLAIN);
     block_column(r, b, "after", "After", "", STYLE_PLAIN);
     return b;
 }
 
-static void difference_row(struct job *j, struct block *b, const char *lead, const char *id,
-                           const char *field, const struct node *before, const struct node *after)
+static void difference_row(struct job *j, struct block *b, const char *lead, const char *field,
+                           const struct node *before, const struct node *after)
 {
     struct row *row = block_row(j->report, b);
-    if (lead)
-        row_text(j->report, row, lead);
-    row_text(j->report, row, id);
+    row_text(j->report, row, lead);
     row_text(j->report, row, field);
     const struct node *sides[] = {before, after};
     for (size_t i = 0; i < 2; i++)
         if (sides[i])
-            row_text(j->report, row, node_brief(j->arena, sides[i], BRIEF));
+            row_text(j->report, row, node_says(j->arena, sides[i], BRIEF));
         else
             row_empty(j->report, row);
 }
 
-void part_differences(struct job *j, struct block *table, const char *lead, const char *id,
+void part_differences(struct job *j, struct block *table, const char *lead,
                       const struct node *before, const struct node *after)
 {
     struct differences d = {0};
-    if (!before || !after) {
-        difference_row(j, table, lead, id, before ? "removed" : "added", before, after);
-        return;
-    }
     patch_differences(j->arena, before, after, &d);
     for (size_t i = 0; i < d.n; i++)
-        difference_row(j, table, lead, id, d.at[i].path, d.at[i].before, d.at[i].after);
+        difference_row(j, table, lead, d.at[i].path, d.at[i].before, d.at[i].after);
 }

@@ -90,6 +90,15 @@ static void explain_table(struct explaining *x)
         explain_row(x->job, b, x->todo.at[i], x->levels.at[i]);
 }
 
+/* What the figure is; whose damage counts only where money is told. */
+static void figure_note(struct job *j, figure_id id)
+{
+    bool money = figure_dim(j->figures, id).e[DIM_MONEY] != 0;
+    report_note(j->report, "figure", "%s = %s: %s.%s", figure_name(j->figures, j->arena, id),
+                shown_value(j, id), properties[figure_at(j->figures, id)->property].help,
+                money ? arena_printf(j->arena, " Damage counted: %s.", perspective_words(j)) : "");
+}
+
 struct explain_request {
     const char *figure;
     unsigned depth;
@@ -108,9 +117,7 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
         return status;
     struct explaining x = {.job = j, .depth = q->depth};
     const struct figure *g = figure_at(j->figures, id);
-    report_note(j->report, "figure", "%s = %s: %s. Damage borne by: %s.",
-                figure_name(j->figures, j->arena, id), shown_value(j, id),
-                properties[g->property].help, perspective_words(j));
+    figure_note(j, id);
     collect(&x, id);
     explain_table(&x);
     if (graph_degree(j->figures->graph, g->node) > 1)

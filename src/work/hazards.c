@@ -20,7 +20,7 @@ static ohmen_status run_hazards(struct job *j, void *ctx, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     part_hazards(j, &h);
-    report_note(j->report, "perspective", "Damage borne by: %s.", perspective_words(j));
+    report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
     return OHMEN_OK;
 }
 
@@ -41,6 +41,10 @@ static ohmen_status run_grid(struct job *j, void *ctx, ohmen_error *e)
             part_hazard_grid(j, &h);
         return status;
     }
+    if (j->query.site)
+        return error_set(e, OHMEN_USAGE,
+                         "the grid of a decision shows every hazard that it reaches: it takes no "
+                         "site");
     status = job_load_figures(j, e);
     if (status == OHMEN_OK)
         status = weigh_compile(j->figures, ctx, &w, e);

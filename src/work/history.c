@@ -43,27 +43,94 @@ static ohmen_status version_node(struct job *j, const struct store_version *v, s
     return json_read(j->arena, v->json, v->n, job_path(j->arena, v->kind, v->id), out, e);
 }
 
+/* The entry of a version: when, by whom and why; what became of the object in it. */
+static ohmen_status version_row(struct job *j, struct block *b, const struct store_version *v,
+                                const char *change, ohmen_error *e)
+{
+    struct report *r = j->report;
+    struct store_entries entry = {0};
+    char utc[UTC_TEXT];
+    ohmen_status status = store_entries(j->store, v->seq, v->seq, &entry, e);
+    if (status != OHMEN_OK)
+        return status;
+    if (entry.n == 0)
+        return error_set(e, OHMEN_REGISTER, "entry %llu is not there: see what verify finds",
+                         (unsigned long long)v->seq);
+    struct row *row = block_row(r, b);
+    row_count(r, row, v->seq);
+    row_text(r, row, utc_write(utc, entry.at[0].utc));
+    row_text(r, row, entry.at[0].author);
+    row_text(r, row, entry.at[0].reason);
+    row_text(r, row, change);
+    return OHMEN_OK;
+}
+
+static ohmen_status versions_table(struct job *j, const char *id, const struct store_versions *all,
+                                   ohmen_error *e)
+{
+    struct report *r = j->report;
+    struct block *b = report_table(r, "versions", arena_printf(j->arena, "History of %s", id));
+    block_column(r, b, "entry", "Entry", "", STYLE_PLAIN);
+    block_column(r, b, "time", "Time (UTC)", "", STYLE_PLAIN);
+    block_column(r, b, "author", "By", "", STYLE_PLAIN)->keep = 2;
+    block_column(r, b, "reason", "Why", "", STYLE_PLAIN)->keep = 3;
+    block_column(r, b, "change", "Change", "", STYLE_PLAIN);
+    for (size_t i = 0; i < all->n; i++) {
+        bool before = i > 0 && all->at[i - 1].json;
+        const char *change = !all->at[i].json ? "removed" : before ? "changed" : "added";
+        ohmen_status status = version_row(j, b, &all->at[i], change, e);
+        if (status != OHMEN_OK)
+            return status;
+    }
+    return OHMEN_OK;
+}
+
+/* What changed from version to version, field by field. */
+static ohmen_status changes_table(struct job *j, const struct store_versions *all, ohmen_error *e)
+{
+    struct node *before = NULL, *after;
+    struct block *b = part_difference_table(j, "fields", "Changed fields", "entry", "Entry");
+    for (size_t i = 0; i < all->n; i++) {
+        ohmen_status status = version_node(j, &all->at[i], &after, e);
+        if (status != OHMEN_OK)
+            return status;
+        const char *entry = arena_printf(j->arena, "%llu", (unsigned long long)all->at[i].seq);
+        if (before && after)
+            part_differences(j, b, entry, before, after);
+        before = after;
+    }
+    if (b->rows.n == 0)
+        j->report->blocks.n--;
+    return OHMEN_OK;
+}
+
+static ohmen_status unknown_object(struct job *j, const char *id, ohmen_error *e)
+{
+    struct nearest near;
+    nearest_init(&near, id);
+    ohmen_status status = job_load_objects(j, e);
+    if (status != OHMEN_OK)
+        return status;
+    for (size_t i = 0; i < j->objects.n; i++)
+        nearest_offer(&near, j->objects.at[i].id);
+    const char *best = nearest_take(&near);
+    return error_set(e, OHMEN_UNKNOWN, "the journal knows nothing of \"%s\"%s%s%s", id,
+                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+}
+
 static ohmen_status list_versions(struct job *j, const char *id, ohmen_error *e)
 {
     struct store_versions all = {0};
     ohmen_status status = store_versions(j->store, id, &all, e);
-    if (status != OHMEN_OK)
-        return status;
-    if (all.n == 0)
-        return error_set(e, OHMEN_UNKNOWN, "the journal knows nothing of \"%s\"", id);
-    struct block *b =
-        part_difference_table(j, "versions", arena_printf(j->arena, "History of %s", id), "Entry");
-    struct node *before = NULL;
-    for (size_t i = 0; i < all.n; i++) {
-        struct node *after;
-        status = version_node(j, &all.at[i], &after, e);
-        if (status != OHMEN_OK)
-            return status;
-        const char *entry = arena_printf(j->arena, "%llu", (unsigned long long)all.at[i].seq);
-        part_differences(j, b, entry, id, before, after);
-        before = after;
-    }
-    return OHMEN_OK;
+    if (status == OHMEN_OK && all.n == 0)
+        return unknown_object(j, id, e);
+    if (status == OHMEN_OK)
+        status = versions_table(j, id, &all, e);
+    if (status == OHMEN_OK)
+        status = changes_table(j, &all, e);
+    if (status == OHMEN_OK)
+        report_note(j->report, "as-of", "What it said then: show %s --as-of ENTRY.", id);
+    return status;
 }
 
 static ohmen_status run_history(struct job *j, void *ctx, ohmen_error *e)
@@ -88,10 +155,9 @@ static ohmen_status run_verify(struct job *j, void *ctx, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     if (found.n == 0) {
-        report_note(
-            r, "result",
-            "%s is whole: %llu entries, every hash, the chain, and all derived tables hold.",
-            j->path, (unsigned long long)head);
+        report_note(r, "result",
+                    "%s is whole: %s, every hash, the chain, and all derived tables hold.", j->path,
+                    count_words(j->arena, head, "entry", "entries"));
         return OHMEN_OK;
     }
     struct block *b = report_table(r, "findings", "What is wrong with the file");

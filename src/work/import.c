@@ -62,6 +62,7 @@ static ohmen_status read_one(struct importing *im, const char *name, ohmen_error
 static ohmen_status read_files(struct importing *im, ohmen_error *e)
 {
     for (size_t i = 0; i < im->settings->n_files; i++) {
+        job_progress(im->job, "reading", i, im->settings->n_files);
         ohmen_status status = read_one(im, im->settings->files[i], e);
         if (status != OHMEN_OK)
             return status;
@@ -83,22 +84,28 @@ static ohmen_status load_stored(struct importing *im, ohmen_error *e)
     return status;
 }
 
-/* The register that would result; NULL with diagnostics. */
-static void check_result(struct importing *im)
+/* The register that would result, in job->model; none with diagnostics. */
+static void check_objects(struct importing *im)
 {
     struct job *j = im->job;
     struct model_sources all = {0};
-    if (im->diags.count || (im->roots.n == 0 && im->stored.n == 0 && im->lists.n == 0))
-        return;
-    if (!documents_merge(j->arena, &im->stored, im->roots.n, im->roots.at, &all, &im->diags))
-        return;
-    if (all.n)
+    job_progress(j, "checking", 0, im->stored.n);
+    if (documents_merge(j->arena, &im->stored, im->roots.n, im->roots.at, &all, &im->diags) &&
+        all.n)
         j->model = model_load(j->arena, all.at, all.n, &im->diags);
-    if (im->diags.count)
-        return;
+}
+
+/* Lists are checked even where a document is wrong, but then not against the objects. */
+static void check_result(struct importing *im)
+{
+    struct job *j = im->job;
+    bool any = im->roots.n || im->stored.n;
+    if (any && im->diags.count == 0)
+        check_objects(im);
+    bool wrong = im->diags.count > 0;
+    const struct model *known = wrong ? NULL : j->model ? j->model : model_new(j->arena);
     for (size_t i = 0; i < im->lists.n; i++)
-        observations_read(j->arena, j->model ? j->model : model_new(j->arena), im->lists.at[i],
-                          &im->observations, &im->diags);
+        observations_read(j->arena, known, im->lists.at[i], &im->observations, &im->diags);
 }
 
 /* --- what changes --- */
@@ -155,7 +162,7 @@ static void consider_object(struct importing *im, const struct object *o,
     change_row(im, block_at(im, blocks->objects), before ? "changed" : "added", o->kind, o->id,
                object_name(o));
     if (before)
-        part_differences(im->job, block_at(im, blocks->fields), NULL, o->id,
+        part_differences(im->job, block_at(im, blocks->fields), o->id,
                          im->stored.at[before - im->job->objects.at].node, o->node);
 }
 
@@ -183,7 +190,7 @@ static void find_changes(struct importing *im)
     block_column(r, b, "object", "Object", "", STYLE_PLAIN);
     block_column(r, b, "name", "Name", "", STYLE_PLAIN)->keep = 2;
     blocks.fields = r->blocks.n;
-    part_difference_table(j, "fields", "Changed fields", NULL);
+    part_difference_table(j, "fields", "Changed fields", "object", "Object");
     struct strmap stored = {0};
     for (size_t i = 0; i < j->objects.n; i++)
         strmap_set(j->arena, &stored, j->objects.at[i].id, &j->objects.at[i]);
@@ -288,14 +295,26 @@ static ohmen_status commit(struct importing *im, uint64_t *seq, ohmen_error *e)
                                   .n_observations = im->observations.n,
                                   .read = im->read.at,
                                   .n_read = im->read.n};
+    job_progress(j, "storing", 0, im->changes.n);
     return store_commit(j->store, &t, seq, e);
 }
 
+static void add_part(struct text *t, size_t n, const char *one, const char *many, const char *how)
+{
+    if (n)
+        text_printf(t, "%s%zu %s %s", t->n ? ", " : "", n, n == 1 ? one : many, how);
+}
+
+/* "3 objects added, 1 object removed, 12 observations added". */
 static const char *summary(struct importing *im)
 {
-    return arena_printf(im->job->arena,
-                        "%zu objects added, %zu changed, %zu removed; %zu observations added",
-                        im->added, im->changed, im->removed, im->observations.n);
+    struct text t;
+    text_init(&t, im->job->arena);
+    add_part(&t, im->added, "object", "objects", "added");
+    add_part(&t, im->changed, "object", "objects", "changed");
+    add_part(&t, im->removed, "object", "objects", "removed");
+    add_part(&t, im->observations.n, "observation", "observations", "added");
+    return text_str(&t);
 }
 
 static ohmen_status run_import(struct job *j, void *ctx, ohmen_error *e)

@@ -82,6 +82,18 @@ void ohmen_close(ohmen_register *r)
         arena_free(r->arena);
 }
 
+void ohmen_watch(ohmen_register *r, ohmen_progress *progress, void *ctx)
+{
+    r->progress = progress;
+    r->progress_ctx = ctx;
+}
+
+void job_progress(const struct job *j, const char *phase, size_t done, size_t total)
+{
+    if (j->reg->progress)
+        j->reg->progress(j->reg->progress_ctx, phase, done, total);
+}
+
 ohmen_query ohmen_query_defaults(void)
 {
     return (ohmen_query){0};
@@ -89,12 +101,16 @@ ohmen_query ohmen_query_defaults(void)
 
 /* --- jobs --- */
 
+/* Objects between two calls of whoever watches. */
+enum { STEPS = 1024 };
+
 static ohmen_status run_guarded(struct arena *a, ohmen_register *r, enum store_mode mode,
                                 const ohmen_query *query, job_run *run, void *ctx,
                                 ohmen_report **out, ohmen_error *e)
 {
     struct job *j = NEW(a, struct job);
     j->arena = a;
+    j->reg = r;
     j->path = r->path;
     j->query = query ? *query : ohmen_query_defaults();
     j->out = NEW(a, struct ohmen_report);
@@ -185,15 +201,28 @@ ohmen_status job_node(struct job *j, const struct store_object *o, struct node *
     return json_read(j->arena, o->json, o->n, job_path(j->arena, o->kind, o->id), out, e);
 }
 
+static ohmen_status no_objects(struct job *j, ohmen_error *e)
+{
+    uint64_t head = 0;
+    ohmen_status status = store_head(j->store, &head, e);
+    if (status != OHMEN_OK)
+        return status;
+    if (j->at != head)
+        return error_set(e, OHMEN_UNKNOWN, "%s held nothing as of %s", j->path, j->query.as_of);
+    return error_set(e, OHMEN_UNKNOWN, "%s %s: import documents into it first", j->path,
+                     j->at == 0 ? "is empty" : "holds no objects");
+}
+
 ohmen_status job_load_model(struct job *j, ohmen_error *e)
 {
     ohmen_status status = job_load_objects(j, e);
     if (status == OHMEN_OK && j->objects.n == 0)
-        return error_set(e, OHMEN_UNKNOWN, "%s %s: import documents into it first", j->path,
-                         j->at == 0 ? "is empty" : "holds no objects");
+        return no_objects(j, e);
     struct model_source *sources = NEW_ARRAY(j->arena, j->objects.n, struct model_source);
     for (size_t i = 0; status == OHMEN_OK && i < j->objects.n; i++) {
         struct node *node;
+        if (i % STEPS == 0)
+            job_progress(j, "reading", i, j->objects.n);
         const struct store_object *o = &j->objects.at[i];
         status = job_node(j, o, &node, e);
         if (status == OHMEN_OK)
@@ -203,6 +232,7 @@ ohmen_status job_load_model(struct job *j, ohmen_error *e)
         return status;
     struct diags d;
     diags_init(&d, j->arena);
+    job_progress(j, "checking", 0, j->objects.n);
     j->model = model_load(j->arena, sources, j->objects.n, &d);
     if (j->model)
         return OHMEN_OK;
@@ -222,19 +252,21 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e)
     return status;
 }
 
-/* Is the hazard at the site, or at one inside it? Sites do not contain themselves. */
-static bool is_at_site(const struct model *m, const char *site, const char *wanted)
+/* Sites do not contain themselves. */
+bool job_at_site(const struct job *j, const char *site)
 {
+    if (!j->query.site)
+        return true;
     while (site) {
-        if (text_equal(site, wanted))
+        if (text_equal(site, j->query.site))
             return true;
-        const struct site *s = model_get(m, KIND_SITE, site);
+        const struct site *s = model_get(j->model, KIND_SITE, site);
         site = s ? s->in : NULL;
     }
     return false;
 }
 
-static ohmen_status check_site(struct job *j, ohmen_error *e)
+ohmen_status job_check_site(struct job *j, ohmen_error *e)
 {
     if (!j->query.site || model_get(j->model, KIND_SITE, j->query.site))
         return OHMEN_OK;
@@ -249,11 +281,13 @@ static ohmen_status check_site(struct job *j, ohmen_error *e)
 
 ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error *e)
 {
-    ohmen_status status = check_site(j, e);
+    ohmen_status status = job_check_site(j, e);
     const struct objects *all = &j->model->of[KIND_HAZARD];
     for (size_t i = 0; status == OHMEN_OK && i < all->n; i++) {
         const struct hazard *h = all->at[i]->data;
-        if (j->query.site && !is_at_site(j->model, h->site, j->query.site))
+        if (i % STEPS == 0)
+            job_progress(j, "computing", i, all->n);
+        if (!job_at_site(j, h->site))
             continue;
         const struct compiled *c;
         status = figures_compile(j->figures, j->base, all->at[i]->id, &c, e);

@@ -26,7 +26,8 @@ const char *unit_per_year(struct job *j)
 
 const char *perspective_words(struct job *j)
 {
-    return j->figures->perspective ? j->figures->perspective : "every category of damage";
+    const char *who = j->figures->perspective;
+    return who ? arena_printf(j->arena, "what %s bears", who) : "every category";
 }
 
 static const char *money_rate(struct job *j, double x)
@@ -72,7 +73,7 @@ void part_title_block(struct job *j, ohmen_error *e)
         pair(j, b, "Content", arena_printf(j->arena, "BLAKE2b-256 %.16s...", hash));
     pair(j, b, "Evaluated",
          arena_printf(j->arena, "%s with ohmen %s", utc_write(now, clock_now()), OHMEN_VERSION));
-    pair(j, b, "Damage borne by", perspective_words(j));
+    pair(j, b, "Damage counted", perspective_words(j));
     pair(j, b, "Money",
          arena_printf(j->arena, "%s at prices of %lld, interest %s", s->currency,
                       (long long)s->prices, reads(j, s->discount)));
@@ -95,16 +96,30 @@ static double risk_of(const struct job *j, const struct compiled *c)
     return figure_value(j->figures, exports(c)->risk);
 }
 
-/* Indices of hazards by falling risk; ties by id. */
+struct ranked {
+    double risk;
+    size_t index;
+};
+
+static int by_falling_risk(const void *p, const void *q)
+{
+    const struct ranked *a = p, *b = q;
+    if (a->risk != b->risk)
+        return a->risk > b->risk ? -1 : 1;
+    return (a->index > b->index) - (a->index < b->index);
+}
+
+/* Indices of hazards by falling risk; ties by id, since hazards come in that order. */
 static size_t *by_risk(struct job *j, const struct hazards *h)
 {
     size_t *order = NEW_ARRAY(j->arena, h->n, size_t);
-    for (size_t i = 0; i < h->n; i++) {
-        size_t k = i;
-        for (; k > 0 && risk_of(j, h->at[i]) > risk_of(j, h->at[order[k - 1]]); k--)
-            order[k] = order[k - 1];
-        order[k] = i;
-    }
+    struct ranked *ranked = NEW_ARRAY(j->arena, h->n, struct ranked);
+    for (size_t i = 0; i < h->n; i++)
+        ranked[i] = (struct ranked){risk_of(j, h->at[i]), i};
+    if (h->n > 1)
+        qsort(ranked, h->n, sizeof *ranked, by_falling_risk);
+    for (size_t i = 0; i < h->n; i++)
+        order[i] = ranked[i].index;
     return order;
 }
 
@@ -137,7 +152,8 @@ static void hazard_row(struct job *j, struct block *b, size_t rank, const struct
     number_cell(j, row, x->damaging);
     number_cell(j, row, x->damage);
     number_cell(j, row, x->risk);
-    row_text(j->report, row, criteria_word(j, risk_of(j, c)));
+    if (*criteria_word(j, 0))
+        row_text(j->report, row, criteria_word(j, risk_of(j, c)));
 }
 
 void part_hazards(struct job *j, const struct hazards *h)
@@ -148,11 +164,12 @@ void part_hazards(struct job *j, const struct hazards *h)
     block_column(r, b, "rank", "Rank", "", STYLE_PLAIN)->keep = 5;
     block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
     block_column(r, b, "name", "What happens", "", STYLE_PLAIN)->keep = 3;
-    block_column(r, b, "frequency", "Occurs", "1/a", STYLE_FREQUENCY)->keep = 2;
+    block_column(r, b, "frequency", "Occurs", "1/a", STYLE_FREQUENCY)->keep = 1;
     block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 4;
     block_column(r, b, "damage", "Mean damage", currency, STYLE_MONEY)->keep = 4;
     block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
-    block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 1;
+    if (*criteria_word(j, 0))
+        block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 2;
     size_t *order = by_risk(j, h);
     for (size_t i = 0; i < h->n; i++)
         hazard_row(j, b, i + 1, h->at[order[i]]);
@@ -242,32 +259,4 @@ void part_cautions(struct job *j)
         "events, and no substitute for protection coordination, arc-flash and earthing studies. "
         "Where people may come to harm, local codes and the judgement of licensed engineers come "
         "first.");
-}
-
-/* --- nodes for people --- */
-
-static void write_brief(struct text *t, const struct node *n)
-{
-    if (n->type == NODE_SCALAR) {
-        text_add(t, n->text);
-        return;
-    }
-    text_byte(t, n->type == NODE_MAP ? '{' : '[');
-    for (size_t i = 0; i < n->n; i++) {
-        text_add(t, i ? ", " : "");
-        if (n->type == NODE_MAP)
-            text_printf(t, "%s: ", n->pairs[i].key);
-        write_brief(t, n->type == NODE_MAP ? n->pairs[i].value : n->items[i]);
-    }
-    text_byte(t, n->type == NODE_MAP ? '}' : ']');
-}
-
-const char *node_brief(struct arena *a, const struct node *n, size_t most)
-{
-    struct text t;
-    text_init(&t, a);
-    write_brief(&t, n);
-    if (utf8_columns(text_str(&t)) <= most)
-        return text_str(&t);
-    return arena_printf(a, "%.*s...", (int)utf8_prefix(text_str(&t), most - 3), text_str(&t));
 }

@@ -29,10 +29,11 @@ static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_erro
 
 /* --- summary --- */
 
-static void part_summary(struct job *j, struct whole *w)
+/* "One hazard, H-BUS, carries a risk of 1.18 kEUR/a." */
+static void total_note(struct job *j, const struct whole *w)
 {
     double sum = 0, most = 0;
-    const char *worst = NULL;
+    const char *worst = NULL, *unit = unit_per_year(j);
     for (size_t i = 0; i < w->hazards.n; i++) {
         const struct hazard_exports *x = w->hazards.at[i]->exports;
         double risk = figure_value(j->figures, x->risk);
@@ -42,18 +43,26 @@ static void part_summary(struct job *j, struct whole *w)
             worst = w->hazards.at[i]->id;
         }
     }
-    report_heading(j->report, 2, "Summary");
-    if (worst)
+    const char *together = money_text(j->arena, sum, unit);
+    if (w->hazards.n == 1)
+        report_note(j->report, "summary", "One hazard, %s, carries a risk of %s.", worst, together);
+    else if (w->hazards.n > 1)
         report_note(
             j->report, "summary",
             "%zu hazards carry a risk of %s together. The largest is %s with %s, %.0f %% of it.",
-            w->hazards.n, money_text(j->arena, sum, unit_per_year(j)), worst,
-            money_text(j->arena, most, unit_per_year(j)), sum > 0 ? 100 * most / sum : 0);
+            w->hazards.n, together, worst, money_text(j->arena, most, unit),
+            sum > 0 ? 100 * most / sum : 0);
+}
+
+static void part_summary(struct job *j, struct whole *w)
+{
+    report_heading(j->report, 2, "Summary");
+    total_note(j, w);
     for (size_t i = 0; i < w->decisions.n; i++) {
-        weigh_rank(j->figures, w->decisions.at[i]);
-        report_note(j->report, arena_printf(j->arena, "summary-%s", w->decisions.at[i]->id),
-                    "%s %s -- %s", w->decisions.at[i]->id, w->decisions.at[i]->decision->question,
-                    weighing_sentence(j, w->decisions.at[i]));
+        struct weighing *x = w->decisions.at[i];
+        weigh_rank(j->figures, x);
+        report_note(j->report, arena_printf(j->arena, "summary-%s", x->id), "%s: %s %s", x->id,
+                    x->decision->question, weighing_sentence(j, x));
     }
 }
 
@@ -67,7 +76,7 @@ static void input_row(struct job *j, struct block *b, const struct compiled *c)
     double shown;
     const char *unit = figure_display(j, c->main, &shown);
     const char *name = figure_name(j->figures, j->arena, c->main);
-    row_text(r, row, name);
+    row_text(r, row, c->id);
     row_text(r, row, object_name(c->object));
     row_number(r, row, shown, name);
     row_text(r, row, unit);
@@ -118,7 +127,10 @@ static void part_sources(struct job *j)
         row_text(r, row, all->at[i]->id);
         row_text(r, row, s->title);
         row_text(r, row, s->reference ? s->reference : "");
-        row_yes(r, row, s->verified);
+        if (node_get(all->at[i]->node, "verified"))
+            row_yes(r, row, s->verified);
+        else
+            row_empty(r, row);
     }
     if (all->n == 0)
         r->blocks.n--;
@@ -128,6 +140,11 @@ static void part_sources(struct job *j)
 
 static void part_decisions(struct job *j, struct whole *w)
 {
+    if (j->query.site && w->decisions.n)
+        report_note(
+            j->report, "decisions-everywhere",
+            "The decisions below are weighed over every hazard that they reach, at whatever "
+            "site.");
     for (size_t i = 0; i < w->decisions.n; i++) {
         struct weighing *x = w->decisions.at[i];
         report_heading(j->report, 2,

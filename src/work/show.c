@@ -1,124 +1,250 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Lists of one kind, and single objects with what is computed of them. */
+/* One object: all that it says, what is computed of it, and who refers to it. */
 #include <string.h>
 
-#include "model/bind.h"
 #include "work/work.h"
 
-enum { BRIEF = 160 };
+/* Columns of what one field says. */
+enum { BRIEF = 400 };
 
-/* --- lists --- */
+/* --- what it says --- */
 
-/* Everything that an object says beside its name, in short. */
-static const char *says(struct job *j, const struct object *o)
+/* Fields of a hazard that stand in tables of their own. */
+static const char *const tabled[] = {"response/*/cleared-by",
+                                     "response/*/in",
+                                     "response/*/sees",
+                                     "response/*/outcome",
+                                     "response/*/split",
+                                     "response/*/if-works",
+                                     "response/*/yes",
+                                     "response/*/no",
+                                     "outcomes/*/name",
+                                     "outcomes/*/damage/*/category",
+                                     "outcomes/*/damage/*/is",
+                                     "outcomes/*/damage/*/varies",
+                                     "outcomes/*/damage/*/source",
+                                     NULL};
+
+/* Does the path begin with the pattern, in which * stands for any one step? */
+static bool path_matches(const char *path, const char *pattern)
 {
-    struct node *rest = node_map(j->arena, o->node->place);
-    const char *name = object_name(o);
-    for (size_t i = 0; i < o->node->n; i++) {
-        const struct pair *p = &o->node->pairs[i];
-        if (p->value->type != NODE_SCALAR || p->value->text != name)
-            node_add(j->arena, rest, p->key, p->place, p->value);
+    while (*pattern) {
+        size_t step = strcspn(path, "/"), want = strcspn(pattern, "/");
+        bool any = want == 1 && *pattern == '*';
+        if (!any && (step != want || strncmp(path, pattern, step) != 0))
+            return false;
+        path += step + (path[step] == '/');
+        pattern += want + (pattern[want] == '/');
     }
-    const struct node *doc = bind_document(j->arena, kinds[o->kind].table, rest);
-    const char *brief = node_brief(j->arena, doc, BRIEF);
-    size_t n = strlen(brief);
-    bool braces = n >= 2 && brief[0] == '{' && brief[n - 1] == '}';
-    return braces ? arena_strn(j->arena, brief + 1, n - 2) : brief;
+    return true;
 }
 
-static ohmen_status unknown_kind(struct job *j, const char *section, ohmen_error *e)
+static bool is_tabled(const struct object *o, const char *path)
 {
-    struct nearest near;
-    nearest_init(&near, section);
-    for (int k = 0; k < KIND_COUNT; k++)
-        nearest_offer(&near, kinds[k].section);
-    const char *best = nearest_take(&near);
-    (void)j;
-    return error_set(e, OHMEN_UNKNOWN,
-                     "there is no kind \"%s\"%s%s%s; kinds are the sections of the documents",
-                     section, best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    for (size_t i = 0; o->kind == KIND_HAZARD && tabled[i]; i++)
+        if (path_matches(path, tabled[i]))
+            return true;
+    return false;
 }
 
-static ohmen_status run_list(struct job *j, void *ctx, ohmen_error *e)
+/* A distribution is said in one line. */
+static bool is_quantity(const char *key)
 {
-    enum kind kind = kind_of_section(ctx);
-    struct report *r = j->report;
-    if (kind == KIND_COUNT)
-        return unknown_kind(j, ctx, e);
-    ohmen_status status = job_load_model(j, e);
-    if (status != OHMEN_OK)
-        return status;
-    const struct objects *all = &j->model->of[kind];
-    struct block *b = report_table(r, kinds[kind].section, NULL);
-    block_column(r, b, "id", kinds[kind].name, "", STYLE_PLAIN);
-    block_column(r, b, "name", "Name", "", STYLE_PLAIN)->keep = 2;
-    block_column(r, b, "says", "Says", "", STYLE_PLAIN)->keep = 1;
-    for (size_t i = 0; i < all->n; i++) {
-        struct row *row = block_row(r, b);
-        row_text(r, row, all->at[i]->id);
-        row_text(r, row, object_name(all->at[i]));
-        row_text(r, row, says(j, all->at[i]));
-    }
-    if (all->n == 0)
-        report_note(r, "none", "The register has no %s.", kinds[kind].section);
-    return OHMEN_OK;
+    return text_equal(key, "is") || text_equal(key, "varies");
 }
 
-ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
-                        ohmen_report **out, ohmen_error *e)
+static void flatten(struct job *j, struct block *b, const struct object *o, const char *path,
+                    const struct node *n)
 {
-    return job_do(r, STORE_READ, q, run_list, (void *)kind, out, e);
-}
-
-/* --- one object --- */
-
-static void flatten(struct job *j, struct block *b, const char *path, const struct node *n)
-{
-    bool deep = n->type == NODE_MAP && n->n > 0;
+    if (is_tabled(o, path))
+        return;
+    const char *slash = strrchr(path, '/');
+    bool deep = n->type == NODE_MAP && n->n > 0 && !is_quantity(slash ? slash + 1 : path);
     if (!deep) {
         struct row *row = block_row(j->report, b);
         row_text(j->report, row, path);
-        row_text(j->report, row, node_brief(j->arena, n, BRIEF));
+        row_text(j->report, row, node_says(j->arena, n, BRIEF));
         return;
     }
     for (size_t i = 0; i < n->n; i++)
-        flatten(j, b, arena_printf(j->arena, "%s%s%s", path, *path ? "/" : "", n->pairs[i].key),
+        flatten(j, b, o, arena_printf(j->arena, "%s%s%s", path, *path ? "/" : "", n->pairs[i].key),
                 n->pairs[i].value);
 }
 
-static void part_object(struct job *j, const struct object *o)
+static void part_object(struct job *j, const struct object *o, const struct node *doc)
 {
     struct report *r = j->report;
     const char *name = object_name(o);
-    report_heading(
-        r, 1,
-        arena_printf(j->arena, "%s %s%s%s", kinds[o->kind].name, o->id, *name ? ": " : "", name));
+    bool lone = o->kind == KIND_REGISTER;
+    report_heading(r, 1,
+                   arena_printf(j->arena, "%s%s%s%s%s", kind_title(j->arena, o->kind),
+                                lone ? "" : " ", lone ? "" : o->id, *name ? ": " : "", name));
     struct block *b = report_table(r, "object", NULL);
     block_column(r, b, "field", "Field", "", STYLE_PLAIN);
     block_column(r, b, "value", "Says", "", STYLE_PLAIN);
-    flatten(j, b, "", bind_document(j->arena, kinds[o->kind].table, o->node));
+    flatten(j, b, o, "", doc);
 }
 
-/* Who refers to it. */
+/* --- the response and the damage of a hazard, as they are stated --- */
+
+static void write_branch(struct text *t, const struct node *n);
+
+static const char *share_words(struct arena *a, const struct node *branch)
+{
+    const struct node *share = node_get(branch, "share");
+    const struct node *is = share->type == NODE_MAP ? node_get(share, "is") : NULL;
+    return node_says(a, is ? is : share, BRIEF);
+}
+
+/* "20 %: fire; rest: burnt", the rest last. */
+static void write_split(struct text *t, const struct node *split)
+{
+    const char *gap = "";
+    for (size_t i = 0; i < 2 * split->n; i++) {
+        const struct node *branch = split->pairs[i % split->n].value;
+        const char *share = share_words(t->arena, branch);
+        bool last = i >= split->n, ends = node_get(branch, "outcome") != NULL;
+        if (text_equal(share, "rest") != last)
+            continue;
+        text_printf(t, "%s%s: %s", gap, share, ends ? "" : "(");
+        write_branch(t, branch);
+        text_add(t, ends ? "" : ")");
+        gap = "; ";
+    }
+}
+
+static void write_branch(struct text *t, const struct node *n)
+{
+    const struct node *outcome = node_get(n, "outcome"), *split = node_get(n, "split");
+    if (outcome) {
+        text_add(t, outcome->text);
+        return;
+    }
+    if (split) {
+        write_split(t, split);
+        return;
+    }
+    text_printf(t, "if %s works: ", node_get(n, "if-works")->text);
+    write_branch(t, node_get(n, "yes"));
+    text_add(t, "; else: ");
+    write_branch(t, node_get(n, "no"));
+}
+
+/* What a field says without its source, or an empty cell. */
+static void stated_cell(struct job *j, struct row *row, const struct node *n)
+{
+    const struct node *is = n && n->type == NODE_MAP ? node_get(n, "is") : NULL;
+    if (n)
+        row_text(j->report, row, node_says(j->arena, is ? is : n, BRIEF));
+    else
+        row_empty(j->report, row);
+}
+
+static void source_cell(struct job *j, struct row *row, const struct node *n)
+{
+    stated_cell(j, row, n && n->type == NODE_MAP ? node_get(n, "source") : NULL);
+}
+
+static void response_row(struct job *j, struct block *b, const char *key, const struct node *n)
+{
+    struct report *r = j->report;
+    struct row *row = block_row(r, b);
+    struct text ends;
+    text_init(&ends, j->arena);
+    write_branch(&ends, n);
+    row_text(r, row, key);
+    stated_cell(j, row, node_get(n, "cleared-by"));
+    stated_cell(j, row, node_get(n, "in"));
+    stated_cell(j, row, node_get(n, "sees"));
+    source_cell(j, row, node_get(n, "sees"));
+    row_text(r, row, text_str(&ends));
+}
+
+/* In the order in which the rows act, which is that of the ends. */
+static void part_response(struct job *j, const struct node *doc, const struct hazard_exports *x)
+{
+    struct report *r = j->report;
+    const struct node *rows = node_get(doc, "response");
+    struct block *b = report_table(r, "response", "Response");
+    block_column(r, b, "row", "Row", "", STYLE_PLAIN);
+    block_column(r, b, "cleared-by", "Cleared by", "", STYLE_PLAIN);
+    block_column(r, b, "in", "In", "", STYLE_PLAIN)->right = true;
+    block_column(r, b, "sees", "Sees", "", STYLE_PLAIN)->keep = 2;
+    block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 1;
+    block_column(r, b, "ends", "Ends in", "", STYLE_PLAIN);
+    for (size_t i = 0; i < x->n_ends; i++)
+        if (i == 0 || !text_equal(x->ends[i].row, x->ends[i - 1].row))
+            response_row(j, b, x->ends[i].row, node_get(rows, x->ends[i].row));
+}
+
+static void damage_row(struct job *j, struct block *b, const char *outcome, const struct pair *item)
+{
+    struct row *row = block_row(j->report, b);
+    const struct node *n = item->value, *is = node_get(n, "is");
+    row_text(j->report, row, outcome);
+    row_text(j->report, row, item->key);
+    stated_cell(j, row, node_get(n, "category"));
+    row_text(j->report, row, is ? "is" : "varies");
+    stated_cell(j, row, is ? is : node_get(n, "varies"));
+    source_cell(j, row, n);
+}
+
+static void part_damage(struct job *j, const struct node *doc)
+{
+    struct report *r = j->report;
+    const struct node *outcomes = node_get(doc, "outcomes");
+    struct block *b = report_table(r, "damage", "Damage as stated");
+    block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
+    block_column(r, b, "item", "Item", "", STYLE_PLAIN);
+    block_column(r, b, "category", "Category", "", STYLE_PLAIN)->keep = 2;
+    block_column(r, b, "sort", "", "", STYLE_PLAIN);
+    block_column(r, b, "stated", "As stated", "", STYLE_PLAIN);
+    block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 1;
+    for (size_t i = 0; outcomes && i < outcomes->n; i++) {
+        const struct node *items = node_get(outcomes->pairs[i].value, "damage");
+        for (size_t k = 0; items && k < items->n; k++)
+            damage_row(j, b, outcomes->pairs[i].key, &items->pairs[k]);
+    }
+    if (b->rows.n == 0)
+        r->blocks.n--;
+}
+
+/* --- who refers to it --- */
+
+/* The path of a reference without the quantity's own key at its end. */
+static const char *reference_place(struct arena *a, const char *path)
+{
+    const char *slash = strrchr(path, '/');
+    return slash && is_quantity(slash + 1) ? arena_strn(a, path, (size_t)(slash - path)) : path;
+}
+
+static void user_row(struct job *j, struct block *b, const struct object *user,
+                     const struct object *o)
+{
+    struct text places;
+    text_init(&places, j->arena);
+    for (size_t i = 0; i < user->refs.n; i++)
+        if (text_equal(user->refs.at[i].id, o->id))
+            text_printf(&places, "%s%s", places.n ? ", " : "",
+                        reference_place(j->arena, user->refs.at[i].path));
+    if (places.n == 0)
+        return;
+    struct row *row = block_row(j->report, b);
+    row_text(j->report, row, kinds[user->kind].name);
+    row_text(j->report, row, user->id);
+    row_text(j->report, row, text_str(&places));
+}
+
 static void part_users(struct job *j, const struct object *o)
 {
     struct report *r = j->report;
     struct block *b = report_table(r, "used-by", "Used by");
-    block_column(r, b, "kind", "Kind", "", STYLE_PLAIN);
+    block_column(r, b, "kind", "Kind", "", STYLE_PLAIN)->keep = 1;
     block_column(r, b, "object", "Object", "", STYLE_PLAIN);
     block_column(r, b, "at", "At", "", STYLE_PLAIN);
     for (int k = 0; k < KIND_COUNT; k++)
-        for (size_t i = 0; i < j->model->of[k].n; i++) {
-            const struct object *user = j->model->of[k].at[i];
-            for (size_t n = 0; n < user->refs.n; n++) {
-                if (!text_equal(user->refs.at[n].id, o->id))
-                    continue;
-                struct row *row = block_row(r, b);
-                row_text(r, row, kinds[k].name);
-                row_text(r, row, user->id);
-                row_text(r, row, user->refs.at[n].path);
-            }
-        }
+        for (size_t i = 0; i < j->model->of[k].n; i++)
+            user_row(j, b, j->model->of[k].at[i], o);
     if (b->rows.n == 0)
         r->blocks.n--;
 }
@@ -199,7 +325,7 @@ static void hazard_pairs(struct job *j, const struct compiled *c)
     struct report *r = j->report;
     const struct hazard_exports *x = c->exports;
     const char *currency = j->model->settings->currency;
-    struct block *b = report_pairs(r, "hazard-figures", "In figures");
+    struct block *b = report_pairs(r, "hazard-figures", "Figures");
     const struct {
         const char *name, *unit;
         enum number_style style;
@@ -226,7 +352,7 @@ static void part_figures(struct job *j, const struct compiled *c)
     hazard_pairs(j, c);
     outcomes_table(j, c);
     ends_table(j, c);
-    report_note(j->report, "perspective", "Damage borne by: %s.", perspective_words(j));
+    report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
 }
 
 static bool has_figures(enum kind k)
@@ -261,7 +387,12 @@ static ohmen_status run_show(struct job *j, void *ctx, ohmen_error *e)
         status = figures_evaluate(j->figures, e);
     if (status != OHMEN_OK)
         return status;
-    part_object(j, o);
+    const struct node *doc = object_document(j->arena, o);
+    part_object(j, o, doc);
+    if (o->kind == KIND_HAZARD) {
+        part_response(j, doc, c->exports);
+        part_damage(j, doc);
+    }
     if (c)
         part_figures(j, c);
     part_users(j, o);

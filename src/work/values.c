@@ -39,6 +39,21 @@ static size_t literal_length(const char *s)
     return n;
 }
 
+/* Is every number in the unit a power of ten? "per 100 km a" is one to be read, "per 167459
+ * transformer a" is not. */
+static bool is_readable(const char *unit)
+{
+    for (const char *p = unit; *p; p++) {
+        bool begins = is_digit(*p) && (p == unit || p[-1] == ' ' || p[-1] == '/');
+        if (!begins)
+            continue;
+        size_t n = *p == '1' ? 1 + strspn(p + 1, "0") : 0;
+        if (n == 0 || is_digit(p[n]) || p[n] == '.')
+            return false;
+    }
+    return true;
+}
+
 /* The unit of the last literal in a text that has the dimension wanted: "kEUR/s" of
  * "uniform, from 30 kEUR/s, to 100 kEUR/s". NULL where there is none. */
 static const char *stated_unit(struct job *j, const char *text, struct dim d, double *factor)
@@ -56,7 +71,7 @@ static const char *stated_unit(struct job *j, const char *text, struct dim d, do
         const char *blank = e && e->op == EXPR_LITERAL ? strchr(e->text, ' ') : NULL;
         double number;
         if (!blank || !dim_equal(e->dim, d) || !text_to_double(e->text, blank, &number) ||
-            number == 0)
+            number == 0 || !is_readable(blank + 1))
             continue;
         unit = blank + 1;
         *factor = e->value / number;
@@ -70,8 +85,10 @@ const char *figure_display(struct job *j, figure_id id, double *shown)
     struct dim d = figure_dim(j->figures, id);
     double value = figure_value(j->figures, id), factor;
     const char *unit = g->text ? stated_unit(j, g->text, d, &factor) : NULL;
-    if (!unit)
-        return display_unit(j, d, value, shown);
+    if (!unit) {
+        unit = display_unit(j, d, value, shown);
+        return text_starts(unit, "1/") ? arena_printf(j->arena, "per %s", unit + 2) : unit;
+    }
     *shown = value / factor;
     return unit;
 }

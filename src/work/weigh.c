@@ -132,7 +132,7 @@ static bool is_shown(const struct weighing *w, size_t alternative)
     return x->n == 1 || (x->n > 1 && x->rank == 1);
 }
 
-static void hazard_row(struct job *j, struct block *b, const struct weighed_hazard *h,
+static void hazard_row(struct job *j, struct block *b, const struct weighed_hazard *h, bool focus,
                        const struct alternative *x, const struct compiled *c)
 {
     struct report *r = j->report;
@@ -148,7 +148,8 @@ static void hazard_row(struct job *j, struct block *b, const struct weighed_haza
         money_cell(j, row, e->damage);
         money_cell(j, row, e->risk);
     }
-    row_text(r, row, h->in_focus ? "yes" : "no");
+    if (focus)
+        row_text(r, row, h->in_focus ? "yes" : "no");
 }
 
 static void hazards_table(struct job *j, const struct weighing *w)
@@ -162,14 +163,16 @@ static void hazards_table(struct job *j, const struct weighing *w)
     block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 3;
     block_column(r, b, "damage", "Mean damage", currency, STYLE_MONEY)->keep = 2;
     block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
-    block_column(r, b, "in-focus", "In focus", "", STYLE_PLAIN)->keep = 1;
+    bool focus = w->decision->focus.n > 0;
+    if (focus)
+        block_column(r, b, "in-focus", "In focus", "", STYLE_PLAIN)->keep = 1;
     for (size_t i = 0; i < w->hazards.n; i++) {
         const struct weighed_hazard *h = &w->hazards.at[i];
-        hazard_row(j, b, h, NULL, h->now);
+        hazard_row(j, b, h, focus, NULL, h->now);
         for (size_t k = 1; k < w->alternatives.n; k++) {
             const struct alternative *x = &w->alternatives.at[k];
             if (is_shown(w, k) && x->hazards[i] != h->now)
-                hazard_row(j, b, h, x, x->hazards[i]);
+                hazard_row(j, b, h, focus, x, x->hazards[i]);
         }
     }
 }
@@ -184,9 +187,7 @@ static void left_out_note(struct job *j, const struct weighing *w)
         text_printf(&t, "%s%s (%s)", i ? "; " : "", w->left_out.at[i].options,
                     w->left_out.at[i].why);
     if (t.n)
-        report_note(j->report, "left-out",
-                    "Not possible, and so not weighed: %s.",
-                    text_str(&t));
+        report_note(j->report, "left-out", "Not possible, and so not weighed: %s.", text_str(&t));
     if (w->only_pairs)
         report_note(
             j->report, "only-pairs",
@@ -288,8 +289,8 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
     report_note(
         j->report, "conventions",
         "Present values at %s; investments at the start of their year, damage and running cost in "
-        "the middle of each year; damage borne by: %s.",
-        node_brief(j->arena, node_get(model_find(j->model, REGISTER_ID)->node, "discount"), 40),
+        "the middle of each year; damage counted: %s.",
+        node_says(j->arena, node_get(model_find(j->model, REGISTER_ID)->node, "discount"), 40),
         perspective_words(j));
     part_unused(j);
     part_cautions(j);

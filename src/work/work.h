@@ -17,6 +17,8 @@ struct ohmen_register {
     const struct mem *mem; /* that all its jobs draw from; NULL: mem_system */
     const char *path;
     ohmen_mode mode;
+    ohmen_progress *progress; /* or NULL */
+    void *progress_ctx;
 };
 
 struct ohmen_report {
@@ -29,6 +31,7 @@ struct ohmen_report {
 
 struct job {
     struct arena *arena;
+    const struct ohmen_register *reg;
     const char *path;
     struct store *store;
     uint64_t at; /* entry that is looked at */
@@ -51,6 +54,9 @@ typedef ohmen_status job_run(struct job *j, void *ctx, ohmen_error *e);
 ohmen_status job_do(ohmen_register *r, enum store_mode mode, const ohmen_query *query, job_run *run,
                     void *ctx, ohmen_report **out, ohmen_error *e);
 
+/* Tells whoever watches the register. */
+void job_progress(const struct job *j, const char *phase, size_t done, size_t total);
+
 /* Steps of a job, each including those before it. */
 ohmen_status job_load_objects(struct job *j, ohmen_error *e); /* at, objects */
 ohmen_status job_load_model(struct job *j, ohmen_error *e);   /* model */
@@ -59,6 +65,13 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e); /* figures, base *
 /* Compiles every hazard that the query asks for, in byte order of ids. */
 struct hazards ARRAY_BODY(const struct compiled *);
 ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error *e);
+
+/* The site that the query asks for must exist. */
+ohmen_status job_check_site(struct job *j, ohmen_error *e);
+
+/* Is the site (NULL: none) the one that the query asks for, or inside it? Always, where it
+ * asks for none. */
+bool job_at_site(const struct job *j, const char *site);
 
 /* The canonical node of a stored object. */
 ohmen_status job_node(struct job *j, const struct store_object *o, struct node **out,
@@ -71,7 +84,7 @@ const char *job_path(struct arena *a, enum kind kind, const char *id);
 
 const char *object_name(const struct object *o); /* its name, title or question; "" */
 const char *unit_per_year(struct job *j);        /* "EUR/a" */
-/* "every category", or the perspective. */
+/* Whose damage counts: "every category", "what society bears". */
 const char *perspective_words(struct job *j);
 
 void part_title_block(struct job *j, ohmen_error *e);
@@ -106,14 +119,28 @@ const char *figure_display(struct job *j, figure_id id, double *shown);
  * a leaf without one, "" for a formula. */
 const char *figure_source(struct job *j, figure_id id);
 
-/* Short text of a canonical node: a scalar's text, or its flow form cut at `most` columns. */
-const char *node_brief(struct arena *a, const struct node *n, size_t most);
+/* --- what objects say (nodes.c) --- */
 
-/* Rows of the differences between two versions of an object (added: before NULL). */
-void part_differences(struct job *j, struct block *table, const char *lead, const char *id,
+/* A node in one line: a scalar's text, or its flow form, without the outer brackets; cut at
+ * `most` columns. */
+const char *node_says(struct arena *a, const struct node *n, size_t most);
+
+/* What a document says of an object: a map of its fields, in the order of their table. */
+const struct node *object_document(struct arena *a, const struct object *o);
+
+/* "Common cause": what an object of the kind is called, with a capital letter. */
+const char *kind_title(struct arena *a, enum kind kind);
+
+/* "1 entry", "3 entries". */
+const char *count_words(struct arena *a, uint64_t n, const char *one, const char *many);
+
+/* --- differences (differences.c) --- */
+
+/* Rows of the differences between two versions of an object, both not NULL. */
+void part_differences(struct job *j, struct block *table, const char *lead,
                       const struct node *before, const struct node *after);
-/* The table that part_differences fills; `lead` names its first column, NULL: none. */
+/* The table that part_differences fills; its first column holds the leads. */
 struct block *part_difference_table(struct job *j, const char *key, const char *title,
-                                    const char *lead);
+                                    const char *lead_key, const char *lead_head);
 
 #endif

@@ -1,0 +1,183 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Everything of one kind as a table: what each object says in the few fields that one
+ * compares such objects by. `show` has the others. Owns nothing. */
+#include <string.h>
+
+#include "work/work.h"
+
+/* Columns of what one field says in a list. */
+enum { BRIEF = 100, ALTERNATIVES = 3 };
+
+/* Where a column of a list comes from: the first of these paths that is given. */
+struct list_column {
+    enum kind kind;
+    const char *key, *head;
+    unsigned keep;
+    const char *paths[ALTERNATIVES];
+};
+
+static const struct list_column list_columns[] = {
+    {KIND_REGISTER, "currency", "Currency", 5, {"currency"}},
+    {KIND_REGISTER, "prices", "Prices", 4, {"prices"}},
+    {KIND_REGISTER, "horizon", "Horizon", 3, {"horizon"}},
+    {KIND_REGISTER, "discount", "Interest", 2, {"discount"}},
+    {KIND_SOURCE, "kind", "Kind", 4, {"kind"}},
+    {KIND_SOURCE, "by", "By", 1, {"by"}},
+    {KIND_SOURCE, "date", "Date", 3, {"date"}},
+    {KIND_SOURCE, "verified", "Verified", 2, {"verified"}},
+    {KIND_SITE, "in", "In", 4, {"in"}},
+    {KIND_SITE, "customers", "Customers", 3, {"customers"}},
+    {KIND_SITE, "load", "Load", 2, {"load"}},
+    {KIND_GROUP, "persons", "Persons", 3, {"persons"}},
+    {KIND_GROUP, "site", "Site", 2, {"site"}},
+    {KIND_VALUE, "is", "Is", 4, {"is"}},
+    {KIND_VALUE, "varies", "Varies", 3, {"varies"}},
+    {KIND_VALUE, "source", "Source", 2, {"source"}},
+    {KIND_RATE, "stated", "As stated", 4, {"is", "prior"}},
+    {KIND_RATE, "per", "Per", 1, {"per"}},
+    {KIND_RATE, "source", "Source", 2, {"prior/source", "source"}},
+    {KIND_TYPE, "kind", "Kind", 3, {"kind"}},
+    {KIND_TYPE, "per-demand", "Fails on demand", 4, {"per-demand"}},
+    {KIND_TYPE, "source", "Source", 2, {"per-demand/source", "source"}},
+    {KIND_ELEMENT, "kind", "Kind", 2, {"kind"}},
+    {KIND_ELEMENT, "site", "Site", 1, {"site"}},
+    {KIND_ELEMENT, "type", "Type", 3, {"type"}},
+    {KIND_ELEMENT, "per-demand", "Fails on demand", 4, {"per-demand"}},
+    {KIND_ELEMENT, "source", "Source", 2, {"per-demand/source", "source"}},
+    {KIND_COMMON_CAUSE, "beta", "Beta", 4, {"beta"}},
+    {KIND_COMMON_CAUSE, "of", "Elements", 3, {"of"}},
+    {KIND_COMMON_CAUSE, "source", "Source", 2, {"source"}},
+    {KIND_SCHEME, "site", "Site", 2, {"site"}},
+    {KIND_SCHEME, "works", "Works by", 4, {"works"}},
+    {KIND_HAZARD, "site", "Site", 3, {"site"}},
+    {KIND_HAZARD, "frequency", "Frequency as stated", 4, {"frequency"}},
+    {KIND_HAZARD, "owner", "Owner", 1, {"owner"}},
+    {KIND_HAZARD, "status", "Status", 2, {"status"}},
+    {KIND_HAZARD, "review", "Review", 2, {"review"}},
+    {KIND_STATE, "is", "Is", 4, {"is"}},
+    {KIND_STATE, "varies", "Varies", 3, {"varies"}},
+    {KIND_OPTION, "site", "Site", 2, {"site"}},
+    {KIND_OPTION, "invest", "Investment", 4, {"invest/is", "invest"}},
+    {KIND_OPTION, "running", "Running cost", 3, {"running/is", "running"}},
+    {KIND_OPTION, "in-service", "In service", 3, {"in-service"}},
+    {KIND_OPTION, "life", "Life", 2, {"life"}},
+    {KIND_DECISION, "options", "Options", 4, {"options"}},
+    {KIND_DECISION, "owner", "Owner", 2, {"owner"}},
+    {KIND_DECISION, "review", "Review", 3, {"review"}},
+    {KIND_PLAN, "options", "Options", 4, {"options"}},
+};
+
+enum { N_COLUMNS = sizeof list_columns / sizeof *list_columns };
+
+/* The node under "a/b", or NULL. */
+static const struct node *node_at(struct arena *a, const struct node *n, const char *path)
+{
+    while (n && *path) {
+        size_t step = strcspn(path, "/");
+        n = n->type == NODE_MAP ? node_get(n, arena_strn(a, path, step)) : NULL;
+        path += step + (path[step] == '/');
+    }
+    return n;
+}
+
+/* A map without the key of its source, which has a column of its own. */
+static const struct node *without_source(struct arena *a, const struct node *n)
+{
+    if (n->type != NODE_MAP)
+        return n;
+    struct node *rest = node_map(a, n->place);
+    for (size_t i = 0; i < n->n; i++)
+        if (!text_equal(n->pairs[i].key, "source"))
+            node_add(a, rest, n->pairs[i].key, n->pairs[i].place, n->pairs[i].value);
+    bool plain = rest->n == 1 && text_equal(rest->pairs[0].key, "is");
+    return plain ? rest->pairs[0].value : rest;
+}
+
+static void list_cell(struct job *j, struct row *row, const struct node *doc,
+                      const struct list_column *c)
+{
+    const struct node *n = NULL;
+    for (size_t i = 0; i < ALTERNATIVES && !n && c->paths[i]; i++)
+        n = node_at(j->arena, doc, c->paths[i]);
+    if (n)
+        row_text(j->report, row, node_says(j->arena, without_source(j->arena, n), BRIEF));
+    else
+        row_empty(j->report, row);
+}
+
+static void list_row(struct job *j, struct block *b, const struct object *o)
+{
+    struct row *row = block_row(j->report, b);
+    const struct node *doc = object_document(j->arena, o);
+    row_text(j->report, row, o->id);
+    row_text(j->report, row, object_name(o));
+    for (size_t i = 0; i < N_COLUMNS; i++)
+        if (list_columns[i].kind == o->kind)
+            list_cell(j, row, doc, &list_columns[i]);
+}
+
+/* A query for a site leaves out what stands elsewhere, of kinds that have a site. */
+static bool is_wanted(const struct job *j, const struct object *o)
+{
+    const struct node *site = node_get(o->node, "site");
+    if (o->kind == KIND_SITE)
+        return job_at_site(j, o->id);
+    if (!table_field(kinds[o->kind].table, "site"))
+        return true;
+    return job_at_site(j, site ? site->text : NULL);
+}
+
+static void list_table(struct job *j, enum kind kind)
+{
+    struct report *r = j->report;
+    const struct objects *all = &j->model->of[kind];
+    struct block *b = report_table(r, kinds[kind].section, NULL);
+    block_column(r, b, "id", kind_title(j->arena, kind), "", STYLE_PLAIN);
+    block_column(r, b, "name", kind == KIND_DECISION ? "Question" : "Name", "", STYLE_PLAIN)->keep =
+        5;
+    for (size_t i = 0; i < N_COLUMNS; i++)
+        if (list_columns[i].kind == kind)
+            block_column(r, b, list_columns[i].key, list_columns[i].head, "", STYLE_PLAIN)->keep =
+                list_columns[i].keep;
+    for (size_t i = 0; i < all->n; i++)
+        if (is_wanted(j, all->at[i]))
+            list_row(j, b, all->at[i]);
+}
+
+static ohmen_status unknown_kind(struct job *j, const char *section, ohmen_error *e)
+{
+    struct nearest near;
+    struct text all;
+    nearest_init(&near, section);
+    text_init(&all, j->arena);
+    for (int k = 0; k < KIND_COUNT; k++) {
+        nearest_offer(&near, kinds[k].section);
+        text_printf(&all, "%s%s", k ? ", " : "", kinds[k].section);
+    }
+    const char *best = nearest_take(&near);
+    if (best)
+        return error_set(e, OHMEN_UNKNOWN, "there is no section \"%s\"; did you mean \"%s\"?",
+                         section, best);
+    return error_set(e, OHMEN_UNKNOWN, "there is no section \"%s\"; the sections are %s", section,
+                     text_str(&all));
+}
+
+static ohmen_status run_list(struct job *j, void *ctx, ohmen_error *e)
+{
+    enum kind kind = kind_of_section(ctx);
+    if (kind == KIND_COUNT)
+        return unknown_kind(j, ctx, e);
+    ohmen_status status = job_load_model(j, e);
+    if (status == OHMEN_OK)
+        status = job_check_site(j, e);
+    if (status != OHMEN_OK)
+        return status;
+    list_table(j, kind);
+    return OHMEN_OK;
+}
+
+ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
+                        ohmen_report **out, ohmen_error *e)
+{
+    return job_do(r, STORE_READ, q, run_list, (void *)kind, out, e);
+}
