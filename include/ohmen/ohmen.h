@@ -114,7 +114,10 @@ ohmen_status ohmen_import(ohmen_register *r, const ohmen_import_settings *s, ohm
 
 /* The register as documents: YAML of all objects, or CSV of all observations. Imported
  * into an empty register they give the same content hash. *text is owned by *out. */
-typedef enum ohmen_export_part { OHMEN_EXPORT_OBJECTS, OHMEN_EXPORT_OBSERVATIONS } ohmen_export_part;
+typedef enum ohmen_export_part {
+    OHMEN_EXPORT_OBJECTS,
+    OHMEN_EXPORT_OBSERVATIONS
+} ohmen_export_part;
 ohmen_status ohmen_export(ohmen_register *r, const ohmen_query *q, ohmen_export_part part,
                           ohmen_report **out, const char **text, ohmen_error *e);
 

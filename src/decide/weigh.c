@@ -222,25 +222,63 @@ static node_id sum(struct worth *x, size_t n, const node_id *nodes, struct dim d
     return n == 1 ? nodes[0] : graph_op(x->f->graph, OP_SUM, n, nodes);
 }
 
-/* Damage per year of all hazards of the decision under a variant. */
-static node_id yearly_damage(struct worth *x, const struct variant *v)
+/* Damage over the horizon as the register is now. */
+static node_id damage_now(struct worth *x)
 {
     node_id *risks = NEW_ARRAY(x->f->arena, x->w->hazards.n, node_id);
     size_t n = 0;
-    struct building under = {.figures = x->f, .variant = v};
     for (size_t i = 0; i < x->w->hazards.n; i++)
-        if (model_find(v->model, x->w->hazards.at[i].id))
-            risks[n++] = compiled_main_node(&under, x->w->hazards.at[i].id);
-    return sum(x, n, risks, dim_money_rate);
+        if (x->w->hazards.at[i].now)
+            risks[n++] = figure_at(x->f, x->w->hazards.at[i].now->main)->node;
+    return graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, 0, x->w->horizon),
+                     sum(x, n, risks, dim_money_rate));
 }
 
-static node_id present_damage(struct worth *x, const struct stretches *s)
+/* The hazard under a variant; NULL where that has no such hazard. */
+static const struct compiled *hazard_under(struct worth *x, const struct variant *v, const char *id)
 {
-    node_id *parts = NEW_ARRAY(x->f->arena, s->n, node_id);
-    for (size_t i = 0; i < s->n; i++)
-        parts[i] = graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, s->at[i].from, s->at[i].to),
-                             yearly_damage(x, s->at[i].variant));
-    return sum(x, s->n, parts, dim_money);
+    struct building under = {.figures = x->f, .variant = v};
+    return model_find(v->model, id) ? compiled_of(&under, id) : NULL;
+}
+
+/* Risk before less risk after; a hazard that is not there has none. Never both NULL. */
+static node_id risk_avoided(struct worth *x, const struct compiled *before,
+                            const struct compiled *after)
+{
+    if (!after)
+        return figure_at(x->f, before->main)->node;
+    node_id risk = figure_at(x->f, after->main)->node;
+    if (!before)
+        return graph_op1(x->f->graph, OP_NEGATE, risk);
+    return graph_op2(x->f->graph, OP_SUBTRACT, figure_at(x->f, before->main)->node, risk);
+}
+
+struct nodes ARRAY_BODY(node_id);
+
+/* Appends what is avoided of one hazard: one term for each time in which the same options
+ * change it. Times of options that do not reach it do not cut it, so that options on
+ * different hazards are worth together what they are worth alone. */
+static void add_avoided(struct worth *x, const struct weighed_hazard *h, const struct stretches *s,
+                        struct nodes *parts)
+{
+    for (size_t i = 0, end; i < s->n; i = end) {
+        const struct compiled *then = hazard_under(x, s->at[i].variant, h->id);
+        end = i + 1;
+        while (end < s->n && hazard_under(x, s->at[end].variant, h->id) == then)
+            end++;
+        if (then != h->now)
+            *array_push(x->f->arena, parts) =
+                graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, s->at[i].from, s->at[end - 1].to),
+                          risk_avoided(x, h->now, then));
+    }
+}
+
+static node_id avoided_damage(struct worth *x, const struct stretches *s)
+{
+    struct nodes parts = {0};
+    for (size_t i = 0; i < x->w->hazards.n; i++)
+        add_avoided(x, &x->w->hazards.at[i], s, &parts);
+    return sum(x, parts.n, parts.at, dim_money);
 }
 
 /* (1 + rate)^-years */
@@ -249,6 +287,14 @@ static node_id discount_factor(struct worth *x, double years)
     struct graph *g = x->f->graph;
     node_id base = graph_op2(g, OP_ADD, compile_const(&x->b, 1, dim_number, NULL), x->rate);
     return graph_op2(g, OP_POWER, base, compile_const(&x->b, -years, dim_number, NULL));
+}
+
+/* The year of the horizon in which a day lies, from 0; what is paid before is paid at its
+ * start. By the calendar: the last day of a leap year lies in that year. */
+static double year_of(const struct register_settings *s, day d)
+{
+    double year = date_year(d) - date_year(weigh_start(s));
+    return fmax(weigh_years(s, d) < year ? year - 1 : year, 0);
 }
 
 /* Appends the present values of an option's investment and running cost. */
@@ -260,8 +306,8 @@ static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
     figure_id invest = compiled_figure(x->f, c, PROPERTY_INVEST, NULL, NULL);
     figure_id running = compiled_figure(x->f, c, PROPERTY_RUNNING, NULL, NULL);
     if (invest != FIGURE_NONE) {
-        double t = o->invest->on == DAY_NONE ? 0 : weigh_years(x->f->base->settings, o->invest->on);
-        double year = fmax(floor(t), 0);
+        double year =
+            o->invest->on == DAY_NONE ? 0 : year_of(x->f->base->settings, o->invest->on);
         node_id node = figure_at(x->f, invest)->node;
         parts[(*n)++] =
             year == 0 ? node : graph_op2(g, OP_MULTIPLY, node, discount_factor(x, year));
@@ -272,28 +318,42 @@ static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
             graph_op2(g, OP_MULTIPLY, figure_at(x->f, running)->node, annuity(x, s.from, s.to));
 }
 
-static bool costs_something(const struct figures *f, const struct alternative *x)
+/* Does it cost anything within the horizon? The options' own figures have values already. */
+static bool costs_something(const struct worth *x, const struct alternative *alt)
 {
-    for (size_t i = 0; i < x->n; i++) {
-        const struct option *o = model_get(f->base, KIND_OPTION, x->options[i]);
-        const struct quantity *parts[] = {o->invest ? o->invest->is : NULL,
-                                          o->running ? o->running->is : NULL};
-        for (size_t k = 0; k < 2; k++)
-            if (parts[k] && !(quantity_is_constant(parts[k]) && expr_constant(parts[k]->expr) == 0))
-                return true;
+    const struct figures *f = x->f;
+    for (size_t i = 0; i < alt->n; i++) {
+        const struct compiled *c = compiled_of(&x->b, alt->options[i]);
+        figure_id invest = compiled_figure(f, c, PROPERTY_INVEST, NULL, NULL);
+        figure_id running = compiled_figure(f, c, PROPERTY_RUNNING, NULL, NULL);
+        struct service s = service_of(f, alt->options[i], x->w->horizon);
+        if (invest != FIGURE_NONE && figure_value(f, invest) != 0)
+            return true;
+        if (running != FIGURE_NONE && s.from < s.to && figure_value(f, running) != 0)
+            return true;
     }
     return false;
+}
+
+static node_id present_cost(struct worth *x, const struct alternative *alt)
+{
+    node_id *parts = NEW_ARRAY(x->f->arena, 2 * alt->n, node_id);
+    size_t n = 0;
+    for (size_t i = 0; i < alt->n; i++)
+        add_cost(x, alt->options[i], parts, &n);
+    return sum(x, n, parts, dim_money);
 }
 
 static void add_alternative(struct worth *x, struct alternative *alt, const struct stretches *s)
 {
     struct graph *g = x->f->graph;
     struct building *b = &x->b;
-    node_id *parts = NEW_ARRAY(x->f->arena, 2 * alt->n, node_id);
-    size_t n = 0;
-    for (size_t i = 0; i < alt->n; i++)
-        add_cost(x, alt->options[i], parts, &n);
-    node_id damage = present_damage(x, s), cost = sum(x, n, parts, dim_money);
+    const struct alternative *nothing = &x->w->alternatives.at[0];
+    node_id benefit = avoided_damage(x, s), cost = present_cost(x, alt), damage;
+    if (alt->n == 0)
+        damage = damage_now(x);
+    else
+        damage = graph_op2(g, OP_SUBTRACT, figure_at(x->f, nothing->present_damage)->node, benefit);
     node_id total = graph_op2(g, OP_ADD, damage, cost);
     alt->present_damage =
         compiled_add(b, PROPERTY_PRESENT_DAMAGE, alt->name, NULL, damage, NULL, NULL);
@@ -302,13 +362,10 @@ static void add_alternative(struct worth *x, struct alternative *alt, const stru
     alt->net = alt->benefit = alt->ratio = FIGURE_NONE;
     if (alt->n == 0)
         return;
-    const struct alternative *nothing = &x->w->alternatives.at[0];
-    node_id benefit =
-        graph_op2(g, OP_SUBTRACT, figure_at(x->f, nothing->present_damage)->node, damage);
-    node_id net = graph_op2(g, OP_SUBTRACT, figure_at(x->f, nothing->total)->node, total);
+    node_id net = graph_op2(g, OP_SUBTRACT, benefit, cost);
     alt->benefit = compiled_add(b, PROPERTY_BENEFIT, alt->name, NULL, benefit, NULL, NULL);
     alt->net = compiled_add(b, PROPERTY_NET, alt->name, NULL, net, NULL, NULL);
-    if (costs_something(x->f, alt))
+    if (costs_something(x, alt))
         alt->ratio = compiled_add(b, PROPERTY_RATIO, alt->name, NULL,
                                   graph_op2(g, OP_RATIO, benefit, cost), NULL, NULL);
 }
@@ -364,8 +421,10 @@ static ohmen_status compile_all(struct figures *f, struct weighing *w, ohmen_err
         return status;
     for (size_t i = 0; i < w->hazards.n; i++)
         w->hazards.at[i].now = w->alternatives.at[0].hazards[i];
-    compile_worth(f, w, base, stretches);
-    return OHMEN_OK;
+    status = figures_evaluate(f, e);
+    if (status == OHMEN_OK)
+        compile_worth(f, w, base, stretches);
+    return status;
 }
 
 static ohmen_status unknown_decision(struct figures *f, const char *id, ohmen_error *e)

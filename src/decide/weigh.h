@@ -8,10 +8,13 @@
  * Conventions (any engineering economy text; docs/methods.md works an example):
  * - time runs in years from register.start (1 January of the year of the prices where
  *   it is left out); a date is its calendar years from there plus days / 365;
- * - an investment is paid at the start of its year: (1 + r)^-floor(t);
+ * - an investment is paid at the start of its year of the horizon: (1 + r)^-floor(t), where
+ *   the last day of a leap year still lies in that year;
  * - damage and running cost are paid in the middle of each year;
  * - an option changes the register from its in-service date until the end of its life or of
  *   the horizon; before and behind that the register is as the other options leave it;
+ * - the damage that an alternative avoids is summed hazard by hazard: (risk now - risk then)
+ *   times the annuity of the time in which the same options change the hazard;
  * - damage is summed over every hazard that any option of the decision reaches, and
  *   the hazards in its focus: the same for all alternatives. */
 #ifndef DECIDE_WEIGH_H

@@ -72,7 +72,7 @@ static node_id rest_share(struct tree *t, const struct rows *split, const node_i
     for (size_t i = 0; i < split->n; i++)
         if (shares[i] != NODE_NONE)
             others[n++] = shares[i];
-    return graph_op1(g, OP_COMPLEMENT, graph_op(g, OP_SUM, n, others));
+    return graph_op1(g, OP_COMPLEMENT, n == 1 ? others[0] : graph_op(g, OP_SUM, n, others));
 }
 
 static const char *dotted(struct arena *a, const char *path)

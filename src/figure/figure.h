@@ -30,7 +30,7 @@
       "mean damage of an outcome, of one item of it, or of a hazard's "                            \
       "damaging outcomes")                                                                         \
     X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
-    X(RISK, "risk", "frequency times damage, of an outcome, a hazard, or the register")            \
+    X(RISK, "risk", "frequency times damage, of an outcome or a hazard")            \
     X(INVEST, "invest", "investment of an option")                                                 \
     X(RUNNING, "running", "running cost of an option per year")                                    \
     X(DISCOUNT, "discount", "interest per year")                                                   \

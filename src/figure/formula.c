@@ -81,17 +81,19 @@ static void write_input(struct writing *w, node_id n)
 
 /* --- ends of event trees and failures of schemes --- */
 
-static void write_condition(struct text *t, const struct compiled *u, const struct condition *c)
+/* A scheme stands without parentheses only where it is the whole condition. */
+static void write_condition(struct text *t, const struct compiled *u, const struct condition *c,
+                            bool whole)
 {
     if (!c)
         return;
-    write_condition(t, u, c->before);
+    write_condition(t, u, c->before, false);
     if (c->before)
         text_add(t, " and ");
     text_add(t, c->works ? "" : "not ");
     if (c->sees_row)
         text_printf(t, "(sees.%s and ", c->sees_row);
-    wiring_text(t, u->variant->model, c->id, !c->before && c->works && !c->sees_row);
+    wiring_text(t, u->variant->model, c->id, whole && !c->before && c->works && !c->sees_row);
     if (c->sees_row)
         text_byte(t, ')');
 }
@@ -149,7 +151,7 @@ static void write_pick(struct writing *w, node_id n)
             i++;
         if (!x->ends[i].condition)
             text_add(w->out, "certain");
-        write_condition(w->out, u, x->ends[i].condition);
+        write_condition(w->out, u, x->ends[i].condition, true);
     }
     text_byte(w->out, ')');
     meet_variables(w, u, text_str(w->out) + from);

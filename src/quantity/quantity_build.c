@@ -301,7 +301,8 @@ struct quantity *quantity_build(struct arena *a, const struct units *u, const ch
     if (!b.row || !check_keys(&b))
         return NULL;
     if (b.row->shape == SHAPE_DISCRETE) {
-        diag_add(d, at, "a discrete distribution takes lists of values and of probabilities");
+        diag_add(d, at,
+                 "the values of a discrete distribution are a map: {low: {is: 2 h, p: 30 %%}}");
         return NULL;
     }
     struct quantity *q = NEW(a, struct quantity);

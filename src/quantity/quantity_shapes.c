@@ -28,9 +28,9 @@ const struct quantity_shape quantity_shapes[] = {
      "A least, a most likely and a greatest value with the most likely one weighing four times "
      "as much as a bound: the mean is (from + 4 most-likely + to) / 6, the form a beta "
      "distribution."},
-    {SHAPE_DISCRETE, "discrete", {"values", "probabilities"}, NULL, true,
-     "One of a list of values, each with its probability; the two lists are equally long and "
-     "the probabilities sum to 1."},
+    {SHAPE_DISCRETE, "discrete", {"values"}, NULL, true,
+     "Some values, each with its probability: {low: {is: 2 h, p: 30 %}, high: {is: 9 h, p: rest}}"
+     "."},
 };
 
 const size_t quantity_n_shapes = sizeof quantity_shapes / sizeof quantity_shapes[0];

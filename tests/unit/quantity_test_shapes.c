@@ -245,8 +245,8 @@ static const struct {
     {"uniform", "from=x,to=2", 2, "a parameter of a distribution must be certain: numbers with "
      "units, without 'x'"},
     {"uniform", "from=1 / 0,to=2", 2, "'1 / 0' has no finite value"},
-    {"discrete", "values=1,probabilities=1", 1, "a discrete distribution takes lists of values "
-     "and of probabilities"},
+    {"discrete", "values=1", 1, "the values of a discrete distribution are a map: "
+     "{low: {is: 2 h, p: 30 %}}"},
 };
 
 START_TEST(bad_build)

@@ -28,7 +28,7 @@ static const struct {
     {"x = 3", 3, "'=' is not expected here; " OPERATOR},
     {".5", 1, "a number needs a digit before its point: 0.5, not .5"},
     {"x .", 3, "the point is not expected here; " OPERATOR},
-    {"5.", 2, "a number needs a digit behind its point: 5 or 5.0, not 5."},
+    {"5.", 2, "a number needs a digit behind its point: not 5. but 5 or 5.0"},
     {"5.1.2", 4, "a number has only one decimal point"},
     {"14 MW .. 22 MW", 7, "a range begins with its level: 90 % within A .. B"},
     {"1 000 EUR", 3, "a number is not expected here (digits are not grouped by blanks); "
