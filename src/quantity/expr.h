@@ -24,8 +24,10 @@
  * figures), and all units; `min` is the minute behind a number and the function before "(". `%`
  * may follow a number directly. "/" behind a literal and before a unit belongs to the literal.
  * `lookup(x; b1 -> v1; b2 -> v2; ...)` is v of the last b that x reaches, and v1 below b1; the b
- * rise strictly.  No function here recurses deeper than a few calls for each nested parenthesis,
- * however long a chain of + - * / is. */
+ * rise strictly.
+ *
+ * No function here recurses deeper than a few calls for each nested parenthesis, however long a
+ * chain of + - * / is. */
 #ifndef QUANTITY_EXPR_H
 #define QUANTITY_EXPR_H
 
