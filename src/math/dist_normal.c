@@ -7,7 +7,7 @@
 
 double dist_normal_probability(double z)
 {
-    return 0.5 * erfc(-z * 0.70710678118654752440); /* z / sqrt 2; DLMF 7.17.1 */
+    return 0.5 * math_erfc(-z * 0.70710678118654752440); /* z / sqrt 2; DLMF 7.17.1 */
 }
 
 /* Below -35 the tail is phi(z)/|z| (1 - 1/z^2 + 3/z^4 - 15/z^6 + ...),

@@ -149,7 +149,8 @@ void report_write_text(struct text *out, const struct report *r, const struct re
  * or plain text; stable key order; ends in a newline. */
 void report_write_json(struct text *out, const struct report *r);
 /* Every table of the report as RFC 4180 rows under a header of keys (with "-UNIT"
- * appended where a unit is known: risk-EUR/a); tables are parted by an empty line. */
+ * appended where a unit is known: risk-EUR/a), and every grid as a table of its marks; tables are
+ * parted by an empty line. */
 void report_write_csv(struct text *out, const struct report *r);
 
 /* The parts that other writers and tests use: three significant digits of the exact

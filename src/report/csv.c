@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The tables of a report as comma-separated values (RFC 4180: CR LF, quotes where
- * needed). Control and invisible characters are shown, not sent; texts that a
+/* The tables of a report and the marks of its grids as comma-separated values (RFC 4180:
+ * CR LF, quotes where needed). Control and invisible characters are shown, not sent; texts that a
  * spreadsheet would take for a formula are guarded. Owns nothing. */
 #include <assert.h>
 #include <math.h>
@@ -87,15 +87,47 @@ static void write_row(struct csv_out *w, const struct block *b, const struct row
     text_add(w->out, "\r\n");
 }
 
+/* --- grids --- */
+
+static void write_mark(struct csv_out *w, const struct grid *g, const struct grid_mark *m)
+{
+    const struct cell frequency = {.type = CELL_NUMBER, .number = m->frequency};
+    const struct cell damage = {.type = CELL_NUMBER, .number = m->damage};
+    const char *values[] = {
+        clean_text(w->arena, m->label, false), clean_text(w->arena, m->name, false),
+        cell_value(w, &frequency), cell_value(w, &damage),
+        m->arrow_from < 0 ? "" : clean_text(w->arena, g->marks.at[m->arrow_from].label, false)};
+    for (size_t j = 0; j < sizeof values / sizeof *values; j++) {
+        text_add(w->out, j ? "," : "");
+        csv_cell(w, values[j]);
+    }
+    text_add(w->out, "\r\n");
+}
+
+/* One row a mark; "from" is the mark at the other end of its arrow. */
+static void write_grid(struct csv_out *w, const struct grid *g)
+{
+    text_add(w->out, "mark,name,frequency-1/a,");
+    csv_cell(w, arena_printf(w->arena, "damage-%s", clean_text(w->arena, g->currency, false)));
+    text_add(w->out, ",from\r\n");
+    for (size_t i = 0; i < g->marks.n; i++)
+        write_mark(w, g, &g->marks.at[i]);
+}
+
 void report_write_csv(struct text *out, const struct report *r)
 {
     struct csv_out w = {out, arena_child(out->arena)};
     size_t n = 0;
     for (size_t i = 0; i < r->blocks.n; i++) {
         const struct block *b = &r->blocks.at[i];
-        if (b->type != BLOCK_TABLE || b->columns.n == 0)
+        bool grid = b->type == BLOCK_GRID && b->grid->marks.n > 0;
+        if (!grid && (b->type != BLOCK_TABLE || b->columns.n == 0))
             continue;
         text_add(out, n++ ? "\r\n" : "");
+        if (grid) {
+            write_grid(&w, b->grid);
+            continue;
+        }
         write_header(&w, b);
         for (size_t k = 0; k < b->rows.n; k++)
             write_row(&w, b, &b->rows.at[k]);
