@@ -57,6 +57,8 @@ const char *node_says(struct arena *a, const struct node *n, size_t most)
     struct text t;
     text_init(&t, a);
     write_brief(&t, n, false);
+    if (n->type != NODE_SCALAR && n->n == 0)
+        text_add(&t, "none");
     if (utf8_columns(text_str(&t)) <= most)
         return text_str(&t);
     return arena_printf(a, "%.*s...", (int)utf8_prefix(text_str(&t), most - 3), text_str(&t));

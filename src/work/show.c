@@ -160,11 +160,8 @@ static void response_row(struct job *j, struct block *b, const char *key, const 
     row_text(r, row, text_str(&ends));
 }
 
-/* In the order in which the rows act, which is that of the ends. */
-static void part_response(struct job *j, const struct node *doc, const struct hazard_exports *x)
+static struct block *response_table(struct report *r)
 {
-    struct report *r = j->report;
-    const struct node *rows = node_get(doc, "response");
     struct block *b = report_table(r, "response", "Response");
     block_column(r, b, "row", "Row", "", STYLE_PLAIN);
     block_column(r, b, "cleared-by", "Cleared by", "", STYLE_PLAIN);
@@ -172,9 +169,20 @@ static void part_response(struct job *j, const struct node *doc, const struct ha
     block_column(r, b, "sees", "Sees", "", STYLE_PLAIN)->keep = 2;
     block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 1;
     block_column(r, b, "ends", "Ends in", "", STYLE_PLAIN);
-    for (size_t i = 0; i < x->n_ends; i++)
+    return b;
+}
+
+/* In the order in which the rows act, which is that of the ends; where there are no figures, as
+ * in the document. */
+static void part_response(struct job *j, const struct node *doc, const struct hazard_exports *x)
+{
+    const struct node *rows = node_get(doc, "response");
+    struct block *b = response_table(j->report);
+    for (size_t i = 0; x && i < x->n_ends; i++)
         if (i == 0 || !text_equal(x->ends[i].row, x->ends[i - 1].row))
             response_row(j, b, x->ends[i].row, node_get(rows, x->ends[i].row));
+    for (size_t i = 0; !x && i < rows->n; i++)
+        response_row(j, b, rows->pairs[i].key, rows->pairs[i].value);
 }
 
 static void damage_row(struct job *j, struct block *b, const char *outcome, const struct pair *item)
@@ -372,29 +380,50 @@ static ohmen_status unknown_object(struct job *j, const char *id, ohmen_error *e
                      best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
 }
 
+/* The figures of the object in *c; NULL, with a reason in *why, where this version has none. */
+static ohmen_status compute(struct job *j, const struct object *o, const struct compiled **c,
+                            const char **why, ohmen_error *e)
+{
+    ohmen_error error = OHMEN_ERROR_INIT;
+    ohmen_status status = OHMEN_OK;
+    *c = NULL;
+    *why = NULL;
+    if (has_figures(o->kind))
+        status = figures_compile(j->figures, j->base, o->id, c, &error);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(j->figures, &error);
+    if (status == OHMEN_OK)
+        return OHMEN_OK;
+    if (status != OHMEN_COMPUTE)
+        return error_set(e, status, "%s", error.text);
+    *c = NULL;
+    *why = arena_str(j->arena, error.text);
+    return OHMEN_OK;
+}
+
 static ohmen_status run_show(struct job *j, void *ctx, ohmen_error *e)
 {
+    const struct compiled *c;
+    const char *why;
     ohmen_status status = job_load_figures(j, e);
     if (status != OHMEN_OK)
         return status;
     const struct object *o = model_find(j->model, ctx);
-    const struct compiled *c = NULL;
     if (!o)
         return unknown_object(j, ctx, e);
-    if (has_figures(o->kind))
-        status = figures_compile(j->figures, j->base, o->id, &c, e);
-    if (status == OHMEN_OK)
-        status = figures_evaluate(j->figures, e);
+    status = compute(j, o, &c, &why, e);
     if (status != OHMEN_OK)
         return status;
     const struct node *doc = object_document(j->arena, o);
     part_object(j, o, doc);
     if (o->kind == KIND_HAZARD) {
-        part_response(j, doc, c->exports);
+        part_response(j, doc, c ? c->exports : NULL);
         part_damage(j, doc);
     }
     if (c)
         part_figures(j, c);
+    if (why)
+        report_note(j->report, "no-figures", "No figures: %s.", why);
     part_users(j, o);
     return OHMEN_OK;
 }

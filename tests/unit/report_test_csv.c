@@ -77,12 +77,37 @@ START_TEST(tables_units_and_types)
 }
 END_TEST
 
+/* A grid is a table of its marks, parted from the table before it. */
+START_TEST(grid_marks)
+{
+    struct arena *a = arena_new(NULL);
+    struct report r;
+    struct text t;
+    report_init(&r, a);
+    text_init(&t, a);
+    struct block *b = report_table(&r, "t", "Title");
+    block_column(&r, b, "x", "X", "", STYLE_PLAIN);
+    row_text(&r, block_row(&r, b), "1");
+    b = report_grid(&r, "g", "Grid", "EUR");
+    grid_add_mark(&r, b, "1", "Fault, today", 2.385e-3, 1.25e6)->arrow_from = -1;
+    grid_add_mark(&r, b, "1a", "=Fault", 0, 40)->arrow_from = 0;
+    report_grid(&r, "empty", "No marks", "EUR");
+    report_write_csv(&t, &r);
+    ck_assert_str_eq(text_str(&t), "x\r\n1\r\n\r\n"
+                                   "mark,name,frequency-1/a,damage-EUR,from\r\n"
+                                   "1,\"Fault, today\",0.002385,1250000,\r\n"
+                                   "1a,'=Fault,0,40,1\r\n");
+    arena_free(a);
+}
+END_TEST
+
 Suite *suite_report_csv(void)
 {
     Suite *s = suite_create("report csv");
     TCase *t = tcase_create("csv");
     tcase_add_test(t, quotes_and_guards);
     tcase_add_test(t, tables_units_and_types);
+    tcase_add_test(t, grid_marks);
     suite_add_tcase(s, t);
     return s;
 }
