@@ -130,11 +130,28 @@ job()
     fi
 }
 
+# compare NAME NAME: two builds print the same bytes.
+compare()
+{
+    echo "== build/$1 and build/$2: the same bytes"
+    result=$(OHMEN=build/$1/src/cli/ohmen OTHER=build/$2/src/cli/ohmen sh tests/tools/bytes.sh)
+    printf '%s\n' "$result" | tail -n 40
+    counts=$(printf '%s\n' "$result" | sed -n 's/^Checks: \([0-9]*\), Failures: \([0-9]*\),.*/\1 \2/p')
+    if [ -z "$counts" ] || [ "${counts% *}" -eq 0 ]; then
+        complain "build/$1 and build/$2: nothing was compared"
+        return
+    fi
+    passed=$((passed + ${counts% *} - ${counts#* })) failed=$((failed + ${counts#* }))
+    [ "${counts#* }" -eq 0 ] || complaints="$complaints
+  build/$1 and build/$2: ${counts#* } outputs differ"
+}
+
 sanitize='-Db_sanitize=address,undefined -Db_lundef=false -Dc_args=-fno-sanitize-recover=all'
 
 job gcc gcc 1
 if [ $all = yes ]; then
     job clang clang 1
+    compare gcc clang
     # shellcheck disable=SC2086
     job gcc-sanitize gcc 4 $sanitize
     # shellcheck disable=SC2086

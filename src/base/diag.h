@@ -6,6 +6,8 @@
 #ifndef BASE_DIAG_H
 #define BASE_DIAG_H
 
+#include <stdbool.h>
+
 #include "base/array.h"
 
 /* Where something stands. line and column count from 1 (columns count
@@ -15,6 +17,7 @@ struct place {
     const char *file;
     uint32_t line, column;
     const char *path; /* "parts/P-1/size/width", or NULL */
+    bool whole;       /* of a text over several lines: a part of it has this place too */
 };
 
 struct diag {

@@ -306,8 +306,7 @@ static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
     figure_id invest = compiled_figure(x->f, c, PROPERTY_INVEST, NULL, NULL);
     figure_id running = compiled_figure(x->f, c, PROPERTY_RUNNING, NULL, NULL);
     if (invest != FIGURE_NONE) {
-        double year =
-            o->invest->on == DAY_NONE ? 0 : year_of(x->f->base->settings, o->invest->on);
+        double year = o->invest->on == DAY_NONE ? 0 : year_of(x->f->base->settings, o->invest->on);
         node_id node = figure_at(x->f, invest)->node;
         parts[(*n)++] =
             year == 0 ? node : graph_op2(g, OP_MULTIPLY, node, discount_factor(x, year));
@@ -399,14 +398,48 @@ static ohmen_status compile_options(struct figures *f, const struct decision *d,
     return OHMEN_OK;
 }
 
+static bool is_left_out(const struct weighing *w, const char *name)
+{
+    for (size_t i = 0; i < w->left_out.n; i++)
+        if (text_equal(w->left_out.at[i].options, name))
+            return true;
+    return false;
+}
+
+/* Larger sets fail with the pairs in them. */
+static bool has_pair_left_out(struct figures *f, const struct weighing *w,
+                              const struct alternative *x)
+{
+    for (size_t i = 0; i < x->n; i++)
+        for (size_t k = 0; k < i; k++) {
+            const char *pair[] = {x->options[k], x->options[i]};
+            if (is_left_out(w, alternative_name(f->arena, 2, pair)))
+                return true;
+        }
+    return false;
+}
+
+/* Makes the variants. Options that are right alone may leave the register wrong together,
+ * such as two that add a row of the same clearance time: then they are no alternative. */
 static ohmen_status find_variants(struct figures *f, struct weighing *w, ohmen_error *e)
 {
+    size_t kept = 0;
     for (size_t i = 0; i < w->alternatives.n; i++) {
-        struct alternative *x = &w->alternatives.at[i];
-        ohmen_status status = figures_variant(f, x->n, x->options, &x->variant, e);
-        if (status != OHMEN_OK)
-            return status;
+        struct alternative x = w->alternatives.at[i];
+        ohmen_error why = OHMEN_ERROR_INIT;
+        if (has_pair_left_out(f, w, &x))
+            continue;
+        ohmen_status status = figures_variant(f, x.n, x.options, &x.variant, &why);
+        if (status == OHMEN_OK)
+            w->alternatives.at[kept++] = x;
+        else if (status == OHMEN_COMPUTE && x.n > 1)
+            *array_push(f->arena, &w->left_out) = (struct not_possible){
+                x.name,
+                arena_printf(f->arena, "together they leave the register wrong: %s", why.text)};
+        else
+            return error_set(e, status, "%s", why.text);
     }
+    w->alternatives.n = kept;
     return OHMEN_OK;
 }
 

@@ -3,7 +3,8 @@
  *
  * Alternatives are doing nothing, each option that is possible alone, and every
  * combination of options in which none excludes another, all that one requires are
- * there, and no two contradict. With more than WEIGH_ALL options only pairs are combined.
+ * there, no two contradict, and the register that they leave is right. With more than
+ * WEIGH_ALL options only pairs are combined.
  *
  * Conventions (any engineering economy text; docs/methods.md works an example):
  * - time runs in years from register.start (1 January of the year of the prices where

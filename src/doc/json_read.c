@@ -203,7 +203,10 @@ static struct node *read_scalar(struct reader *r, const char *path)
 {
     if (peek(r) == '"') {
         const char *s = read_string(r);
-        return s ? node_scalar(r->a, FORM_TEXT, s, place_of(path)) : NULL;
+        struct node *n = s ? node_scalar(r->a, FORM_TEXT, s, place_of(path)) : NULL;
+        if (n)
+            n->quoted = true; /* a text "no" is not the removal `no` */
+        return n;
     }
     if (peek(r) >= '0' && peek(r) <= '9')
         return read_count(r, path);

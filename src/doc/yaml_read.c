@@ -271,6 +271,7 @@ static void take_value(struct reader *r, struct frame *f)
         f->plain = text && *text && is_plain(r) ? text : NULL;
     struct node *n = node_scalar(r->a, FORM_TEXT, text ? text : "", here(r));
     n->quoted = !is_plain(r);
+    n->place.whole = r->event.start_mark.line != r->event.end_mark.line;
     attach(r, n);
 }
 

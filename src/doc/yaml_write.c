@@ -119,6 +119,15 @@ static void write_text(struct text *out, const char *s)
         write_quoted(out, s);
 }
 
+/* The text "no" stays quoted: where it is plain, a change takes it for a removal. */
+static void write_scalar(struct text *out, const struct node *n)
+{
+    if (n->quoted && n->form == FORM_TEXT && strcmp(n->text, "no") == 0)
+        write_quoted(out, n->text);
+    else
+        write_text(out, n->text);
+}
+
 /* ---- brackets ---- */
 
 /* Is it a scalar, or a map or list of which nothing is nested deeper than
@@ -138,7 +147,7 @@ static bool is_shallow(const struct node *n, int levels)
 static void write_flow(struct text *out, const struct node *n)
 {
     if (n->type == NODE_SCALAR) {
-        write_text(out, n->text);
+        write_scalar(out, n);
         return;
     }
     text_byte(out, n->type == NODE_MAP ? '{' : '[');

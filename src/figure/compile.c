@@ -278,10 +278,10 @@ static const struct quantity *record_quantity(struct arena *a, const struct dema
         .shape = SHAPE_BETA,
         .p = {prior + (double)r->failures, prior + (double)(r->demands - r->failures)},
         .times = 1};
-    q->text = arena_printf(a, "%s prior with %lld failure%s in %lld demand%s",
-                           demand_priors[r->prior], (long long)r->failures,
-                           r->failures == 1 ? "" : "s", (long long)r->demands,
-                           r->demands == 1 ? "" : "s");
+    q->text =
+        arena_printf(a, "%s prior with %lld failure%s in %lld demand%s", demand_priors[r->prior],
+                     (long long)r->failures, r->failures == 1 ? "" : "s", (long long)r->demands,
+                     r->demands == 1 ? "" : "s");
     return q;
 }
 

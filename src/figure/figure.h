@@ -107,8 +107,9 @@ struct figures {
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
                          struct figures **out, ohmen_error *e);
 
-/* The variant of a set of options (any order, no repetition). OHMEN_COMPUTE when they
- * contradict or leave the register wrong: the message is the first diagnostic. */
+/* The variant of a set of options, in any order. OHMEN_UNKNOWN for what is no option or
+ * stands twice, OHMEN_COMPUTE when they contradict or leave the register wrong: the message
+ * is the first diagnostic. */
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e);
 

@@ -121,16 +121,30 @@ static ohmen_status make_variant(struct figures *f, size_t n, const char *const 
     return OHMEN_OK;
 }
 
+static ohmen_status unknown_option(struct figures *f, const char *id, ohmen_error *e)
+{
+    struct nearest near;
+    nearest_init(&near, id);
+    for (size_t i = 0; i < f->base->of[KIND_OPTION].n; i++)
+        nearest_offer(&near, f->base->of[KIND_OPTION].at[i]->id);
+    const char *best = nearest_take(&near);
+    return error_set(e, OHMEN_UNKNOWN, "there is no option \"%s\"%s%s%s", id,
+                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+}
+
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e)
 {
     const char **sorted = NEW_ARRAY(f->arena, n, const char *);
     for (size_t i = 0; i < n; i++) {
         if (!model_get(f->base, KIND_OPTION, options[i]))
-            return error_set(e, OHMEN_UNKNOWN, "there is no option \"%s\"", options[i]);
+            return unknown_option(f, options[i], e);
         sorted[i] = options[i];
     }
     qsort(sorted, n, sizeof *sorted, by_text);
+    for (size_t i = 0; i + 1 < n; i++)
+        if (text_equal(sorted[i], sorted[i + 1]))
+            return error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is named twice", sorted[i]);
     const char *key = variant_key(f->arena, n, sorted);
     struct variant *v = strmap_get(&f->variants, key);
     if (!v) {

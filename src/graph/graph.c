@@ -248,6 +248,17 @@ node_id graph_op(struct graph *g, enum graph_op op, size_t n, const node_id *arg
                                          .n = (uint32_t)n}, args);
 }
 
+node_id graph_apart(struct graph *g, node_id n, uint32_t number)
+{
+    struct graph_node copy = *graph_at(g, n);
+    assert(g->open && number > 0);
+    bool is_plain = copy.op != OP_INPUT && copy.op != OP_DIAGRAM && copy.op != OP_PICK;
+    if (!is_plain || n < array_last(&g->sections)->first)
+        return n;
+    copy.extra = number;
+    return intern(g, copy, g->args.at + copy.first);
+}
+
 node_id graph_op1(struct graph *g, enum graph_op op, node_id x)
 {
     return graph_op(g, op, 1, &x);

@@ -64,7 +64,8 @@ struct graph_node {
     uint32_t n;       /* arguments */
     uint32_t first;   /* index of the first argument: graph_args */
     uint32_t extra;   /* INPUT: caller's number of the input; PICK: which result;
-                         DIAGRAM: index of the diagram: graph_diagram_of */
+                         DIAGRAM: index of the diagram: graph_diagram_of; others:
+                         the number of graph_apart, or 0 */
     double constant;  /* CONST: the value; INPUT: the mean */
 };
 
@@ -90,6 +91,10 @@ section_id graph_section_of(const struct graph *g, node_id n);
 node_id graph_const(struct graph *g, double value, struct dim dim);
 node_id graph_input(struct graph *g, uint32_t input, double mean, struct dim dim);
 node_id graph_op(struct graph *g, enum graph_op op, size_t n, const node_id *args);
+/* The constant or the operation n once more, equal only to what has the same number (> 0):
+ * for what is the same by chance. n itself where it is an input, a diagram, a result of one,
+ * or not of the open section. */
+node_id graph_apart(struct graph *g, node_id n, uint32_t number);
 node_id graph_op1(struct graph *g, enum graph_op op, node_id x);
 node_id graph_op2(struct graph *g, enum graph_op op, node_id x, node_id y);
 

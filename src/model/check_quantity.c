@@ -116,6 +116,22 @@ static const struct dim *expected_dim(enum field_dim d)
     return NULL;
 }
 
+static const char *expected_words(enum field_dim d)
+{
+    switch (d) {
+    case NUMBER: return "a pure number";
+    case PROBABILITY: return "a probability such as 5 %";
+    case TIME: return "a time such as 2 h";
+    case POWER: return "power such as 3 MW";
+    case MONEY: return "money such as 40 kEUR";
+    case FREQUENCY: return "a number per time such as 0.02 per a";
+    case INTEREST: return "interest per time such as 4 % per a";
+    case MONEY_RATE: return "money per time such as 5 kEUR per a";
+    case ANY: break;
+    }
+    return "a quantity";
+}
+
 struct certainty {
     struct checking *c;
     bool certain;
@@ -164,9 +180,8 @@ static void check_field(struct quantities_walk *w, const struct visit *v)
     }
     const struct dim *want = expected_dim(v->field->dim);
     if (want && !dim_equal(*want, q->dim))
-        diag_add(w->c->diags, at, "expected %s%s%s%s, found %s",
-                 dim_words(w->c->arena, &w->c->model->units, *want), v->key ? " for \"" : "",
-                 v->key ? v->key : "", v->key ? "\"" : "",
+        diag_add(w->c->diags, at, "expected %s%s%s%s, found %s", expected_words(v->field->dim),
+                 v->key ? " for \"" : "", v->key ? v->key : "", v->key ? "\"" : "",
                  dim_words(w->c->arena, &w->c->model->units, q->dim));
     if ((v->field->flags & CERTAIN) && !check_is_certain(w->c, q))
         diag_add(w->c->diags, at, "a certain number is needed here, but a name in it is uncertain");

@@ -185,7 +185,8 @@ static const struct node *original(struct merging *m, const struct entry *e,
         diag_add(m->diags, like->place, "\"like\" names one object");
         return NULL;
     }
-    struct entry *from = strmap_get(&m->entries, like->text);
+    bool itself = text_equal(like->text, e->id); /* as it is stored: only some fields change */
+    struct entry *from = itself ? NULL : strmap_get(&m->entries, like->text);
     if (!from || from->removed)
         from = strmap_get(&m->stored, like->text);
     if (!from || from->kind != e->kind) {

@@ -43,8 +43,10 @@ ohmen_status store_backup(struct store *s, const char *path, ohmen_error *e)
 {
     struct stat st;
     if (lstat(path, &st) == 0)
-        return error_set(e, OHMEN_INPUT, "cannot make %s: a file of this name exists", path);
+        return error_set(e, OHMEN_IO, "cannot make %s: a file of this name exists", path);
     ohmen_status status = place_check(s->arena, path, path, e);
+    if (status == OHMEN_OK)
+        status = place_writable(s->arena, path, e);
     if (status != OHMEN_OK)
         return status;
     struct arena *a = arena_child(s->arena);

@@ -122,8 +122,10 @@ static ohmen_status create(struct arena *a, const char *vfs, const char *path, o
 {
     struct stat st;
     if (lstat(path, &st) == 0)
-        return error_set(e, OHMEN_INPUT, "cannot make %s: a file of this name exists", path);
+        return error_set(e, OHMEN_IO, "cannot make %s: a file of this name exists", path);
     ohmen_status status = place_check(a, path, path, e);
+    if (status == OHMEN_OK)
+        status = place_writable(a, path, e);
     if (status != OHMEN_OK)
         return status;
     const char *part = place_part(a, path);

@@ -60,6 +60,8 @@ const char *place_folder(struct arena *a, const char *path);
 bool place_is_network(const char *type);
 /* Refuses a path whose folder is on such a file system; `name` is for the message. */
 ohmen_status place_check(struct arena *a, const char *path, const char *name, ohmen_error *e);
+/* Can a file be made there? The message names the file that is wanted. */
+ohmen_status place_writable(struct arena *a, const char *path, ohmen_error *e);
 /* What place_publish does where the file system has no links: claims the name with an
  * empty file and renames over it. 0 or the errno. */
 int place_rename(const char *part, const char *path);

@@ -108,6 +108,13 @@ ohmen_status place_check(struct arena *a, const char *path, const char *name, oh
     return status;
 }
 
+ohmen_status place_writable(struct arena *a, const char *path, ohmen_error *e)
+{
+    if (access(place_folder(a, path), W_OK | X_OK) == 0)
+        return OHMEN_OK;
+    return error_set(e, OHMEN_IO, "cannot make %s: %s", path, error_system(errno));
+}
+
 static ohmen_status sync_folder(struct arena *a, const char *path, ohmen_error *e)
 {
     const char *folder = place_folder(a, path);
@@ -143,7 +150,7 @@ ohmen_status place_publish(struct arena *a, const char *part, const char *path, 
 {
     int why = give_name(part, path);
     if (why == EEXIST)
-        return error_set(e, OHMEN_INPUT, "cannot make %s: a file of this name exists", path);
+        return error_set(e, OHMEN_IO, "cannot make %s: a file of this name exists", path);
     if (why)
         return error_set(e, OHMEN_IO, "cannot make %s: %s", path, error_system(why));
     return sync_folder(a, path, e);

@@ -27,7 +27,7 @@ enum store_mode {
 };
 
 /* Creates a new register file, all or nothing; a name that is taken is refused
- * (OHMEN_INPUT). It has no entry yet. */
+ * (OHMEN_IO). It has no entry yet. */
 ohmen_status store_create(const char *path, ohmen_error *e);
 
 /* Opens a register; closed when `a` is freed. Refused, each with a sentence of its

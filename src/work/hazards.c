@@ -19,6 +19,7 @@ static ohmen_status run_hazards(struct job *j, void *ctx, ohmen_error *e)
     ohmen_status status = compute_hazards(j, &h, e);
     if (status != OHMEN_OK)
         return status;
+    part_not_computed(j);
     part_hazards(j, &h);
     report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
     return OHMEN_OK;
@@ -37,9 +38,11 @@ static ohmen_status run_grid(struct job *j, void *ctx, ohmen_error *e)
     ohmen_status status;
     if (!ctx) {
         status = compute_hazards(j, &h, e);
-        if (status == OHMEN_OK)
-            part_hazard_grid(j, &h);
-        return status;
+        if (status != OHMEN_OK)
+            return status;
+        part_not_computed(j);
+        part_hazard_grid(j, &h);
+        return OHMEN_OK;
     }
     if (j->query.site)
         return error_set(e, OHMEN_USAGE,

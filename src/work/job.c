@@ -279,6 +279,16 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e)
                      best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
 }
 
+ohmen_status job_leave_out(struct job *j, const char *id, ohmen_status status,
+                           const ohmen_error *why, ohmen_error *e)
+{
+    if (status != OHMEN_COMPUTE)
+        return error_set(e, status, "%s", why->text);
+    *array_push(j->arena, &j->not_computed) =
+        (struct not_computed){id, arena_str(j->arena, why->text)};
+    return OHMEN_OK;
+}
+
 ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error *e)
 {
     ohmen_status status = job_check_site(j, e);
@@ -290,9 +300,12 @@ ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error
         if (!job_at_site(j, h->site))
             continue;
         const struct compiled *c;
-        status = figures_compile(j->figures, j->base, all->at[i]->id, &c, e);
+        ohmen_error why = OHMEN_ERROR_INIT;
+        status = figures_compile(j->figures, j->base, all->at[i]->id, &c, &why);
         if (status == OHMEN_OK)
             *array_push(j->arena, out) = c;
+        else
+            status = job_leave_out(j, all->at[i]->id, status, &why, e);
     }
     return status;
 }

@@ -211,6 +211,21 @@ void part_hazard_grid(struct job *j, const struct hazards *h)
 
 /* --- notes --- */
 
+void part_not_computed(struct job *j)
+{
+    struct report *r = j->report;
+    if (j->not_computed.n == 0)
+        return;
+    struct block *b = report_table(r, "not-computed", "LEFT OUT: what cannot be computed");
+    block_column(r, b, "object", "Object", "", STYLE_PLAIN);
+    block_column(r, b, "why", "Why", "", STYLE_PLAIN);
+    for (size_t i = 0; i < j->not_computed.n; i++) {
+        struct row *row = block_row(r, b);
+        row_text(r, row, j->not_computed.at[i].id);
+        row_text(r, row, j->not_computed.at[i].why);
+    }
+}
+
 void part_unused(struct job *j)
 {
     struct unused u = {0};

@@ -19,10 +19,14 @@ static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_erro
             *array_push(j->arena, &w->trees) = all->at[i]->id;
             continue;
         }
-        ohmen_status status = weigh_compile(j->figures, all->at[i]->id, &x, e);
+        ohmen_error why = OHMEN_ERROR_INIT;
+        ohmen_status status = weigh_compile(j->figures, all->at[i]->id, &x, &why);
+        if (status == OHMEN_OK)
+            *array_push(j->arena, &w->decisions) = x;
+        else
+            status = job_leave_out(j, all->at[i]->id, status, &why, e);
         if (status != OHMEN_OK)
             return status;
-        *array_push(j->arena, &w->decisions) = x;
     }
     return OHMEN_OK;
 }
@@ -173,6 +177,7 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
         return status;
     part_title_block(j, e);
     part_summary(j, &w);
+    part_not_computed(j);
     report_heading(j->report, 2, "Hazards");
     part_hazards(j, &w.hazards);
     part_hazard_grid(j, &w.hazards);

@@ -54,12 +54,17 @@ static bool is_readable(const char *unit)
     return true;
 }
 
-/* The unit of the last literal in a text that has the dimension wanted: "kEUR/s" of
- * "uniform, from 30 kEUR/s, to 100 kEUR/s". NULL where there is none. */
-static const char *stated_unit(struct job *j, const char *text, struct dim d, double *factor)
+/* What a text states of a figure: the last literal in it that has the dimension wanted, as
+ * "100 kEUR/s" in "uniform, from 30 kEUR/s, to 100 kEUR/s". */
+struct stated {
+    const char *unit; /* NULL: there is none */
+    double number, value;
+};
+
+static struct stated last_stated(struct job *j, const char *text, struct dim d)
 {
     struct diags quiet;
-    const char *unit = NULL;
+    struct stated last = {0};
     diags_init(&quiet, j->arena);
     for (const char *p = text; *p; p++) {
         bool begins = is_digit(*p) && (p == text || p[-1] == ' ' || p[-1] == '(');
@@ -73,24 +78,25 @@ static const char *stated_unit(struct job *j, const char *text, struct dim d, do
         if (!blank || !dim_equal(e->dim, d) || !text_to_double(e->text, blank, &number) ||
             number == 0 || !is_readable(blank + 1))
             continue;
-        unit = blank + 1;
-        *factor = e->value / number;
+        last = (struct stated){blank + 1, number, e->value};
     }
-    return unit;
+    return last;
 }
 
 const char *figure_display(struct job *j, figure_id id, double *shown)
 {
     const struct figure *g = figure_at(j->figures, id);
     struct dim d = figure_dim(j->figures, id);
-    double value = figure_value(j->figures, id), factor;
-    const char *unit = g->text ? stated_unit(j, g->text, d, &factor) : NULL;
-    if (!unit) {
-        unit = display_unit(j, d, value, shown);
+    double value = figure_value(j->figures, id);
+    struct stated s = {0};
+    if (g->text)
+        s = last_stated(j, g->text, d);
+    if (!s.unit) {
+        const char *unit = display_unit(j, d, value, shown);
         return text_starts(unit, "1/") ? arena_printf(j->arena, "per %s", unit + 2) : unit;
     }
-    *shown = value / factor;
-    return unit;
+    *shown = value == s.value ? s.number : value / (s.value / s.number);
+    return s.unit;
 }
 
 const char *figure_source(struct job *j, figure_id id)

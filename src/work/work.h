@@ -29,6 +29,11 @@ struct ohmen_report {
     jmp_buf guard;    /* of the writers */
 };
 
+/* What cannot be evaluated, and why. */
+struct not_computed {
+    const char *id, *why;
+};
+
 struct job {
     struct arena *arena;
     const struct ohmen_register *reg;
@@ -40,6 +45,7 @@ struct job {
     struct model *model;
     struct figures *figures;
     const struct variant *base;
+    ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
     struct ohmen_report *out;
     struct report *report; /* &out->report */
     bool keep_report;      /* the report goes out although the job fails */
@@ -62,7 +68,8 @@ ohmen_status job_load_objects(struct job *j, ohmen_error *e); /* at, objects */
 ohmen_status job_load_model(struct job *j, ohmen_error *e);   /* model */
 ohmen_status job_load_figures(struct job *j, ohmen_error *e); /* figures, base */
 
-/* Compiles every hazard that the query asks for, in byte order of ids. */
+/* Compiles every hazard that the query asks for, in byte order of ids. One that this
+ * version cannot evaluate is left out and noted in not_computed. */
 struct hazards ARRAY_BODY(const struct compiled *);
 ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error *e);
 
@@ -72,6 +79,11 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e);
 /* Is the site (NULL: none) the one that the query asks for, or inside it? Always, where it
  * asks for none. */
 bool job_at_site(const struct job *j, const char *site);
+
+/* Notes an object that cannot be evaluated (OHMEN_COMPUTE), and goes on; any other status is
+ * handed on. */
+ohmen_status job_leave_out(struct job *j, const char *id, ohmen_status status,
+                           const ohmen_error *why, ohmen_error *e);
 
 /* The canonical node of a stored object. */
 ohmen_status job_node(struct job *j, const struct store_object *o, struct node **out,
@@ -90,6 +102,8 @@ const char *perspective_words(struct job *j);
 void part_title_block(struct job *j, ohmen_error *e);
 void part_hazards(struct job *j, const struct hazards *h);
 void part_hazard_grid(struct job *j, const struct hazards *h);
+/* What is left out because it cannot be evaluated, and why; nothing when all could. */
+void part_not_computed(struct job *j);
 /* Notes: fields that are stored but not used, figures that are not linear in what is
  * unknown, and the usual cautions. */
 void part_unused(struct job *j);

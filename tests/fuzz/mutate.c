@@ -3,6 +3,7 @@
 #include "mutate.h"
 
 #include <dirent.h>
+#include <stdbool.h>
 #include <string.h>
 
 #include "base/file.h"
@@ -144,17 +145,62 @@ static void indent_line(struct work *w)
         insert(w, at + 1, random_index(&w->r, 4) ? " " : "\t", 1);
 }
 
+/* ---- steps that keep the form: words for words, digits for digits ---- */
+
+static bool is_word_byte(char c)
+{
+    return (c >= 'a' && c <= 'z') || (c >= 'A' && c <= 'Z') || (c >= '0' && c <= '9') ||
+           c == '-' || c == '.' || c == '%';
+}
+
+/* A word of the text at a random place; n is 0 when there stands none. */
+static struct input some_word(struct work *w)
+{
+    size_t from = random_index(&w->r, w->n + 1), to = from;
+    while (from > 0 && is_word_byte(w->bytes[from - 1]))
+        from--;
+    while (to < w->n && is_word_byte(w->bytes[to]))
+        to++;
+    return (struct input){NULL, w->bytes + from, to - from};
+}
+
+/* One word takes the place of another one. */
+static void change_word(struct work *w)
+{
+    char copy[64];
+    struct input with = some_word(w), old = some_word(w);
+    if (old.n == 0 || with.n == 0 || with.n > sizeof copy)
+        return;
+    size_t at = (size_t)(old.bytes - w->bytes);
+    memcpy(copy, with.bytes, with.n);
+    memmove(w->bytes + at, w->bytes + at + old.n, w->n - at - old.n);
+    w->n -= old.n;
+    insert(w, at, copy, with.n);
+}
+
+static void change_digit(struct work *w)
+{
+    size_t at = random_index(&w->r, w->n + 1);
+    while (at < w->n && (w->bytes[at] < '0' || w->bytes[at] > '9'))
+        at++;
+    if (at < w->n)
+        w->bytes[at] = (char)('0' + random_index(&w->r, 10));
+}
+
 struct input mutate(struct arena *a, const struct corpus *c, uint64_t number)
 {
     static void (*const steps[])(struct work *) = {insert_word, insert_word, flip_bit,
                                                    overwrite_byte, remove_some, remove_line,
                                                    repeat_some, cut_end, splice, indent_line};
+    static void (*const gentle[])(struct work *) = {change_word, change_digit, change_digit,
+                                                    change_digit, remove_line};
     struct work w = {.r = random_seed(number), .c = c};
+    bool keep_form = random_index(&w.r, 2);
     const struct input *seed = &c->seeds[random_index(&w.r, c->n)];
     w.bytes = arena_alloc(a, MUTATE_BYTES);
     insert(&w, 0, seed->bytes, seed->n);
     /* few steps more often than many, so that a good part stays readable */
     for (size_t n = 1 + random_index(&w.r, 1 + random_index(&w.r, 6)); n > 0; n--)
-        random_pick(&w.r, steps)(&w);
+        (keep_form ? random_pick(&w.r, gentle) : random_pick(&w.r, steps))(&w);
     return (struct input){seed->name, w.bytes, w.n};
 }

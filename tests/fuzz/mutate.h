@@ -4,7 +4,9 @@
  * The same seeds, words and number give the same bytes on any machine. A mutation
  * makes one to six steps: it flips, removes, repeats or overwrites bytes, removes
  * or indents a line, puts a word of the dictionary somewhere, cuts the end off, or
- * splices two seeds. */
+ * splices two seeds. Every other mutation keeps the form: it only changes words for
+ * words of the same text and digits for digits, or removes lines, so that much of it is
+ * still taken by what stands behind the reader. */
 #ifndef TESTS_MUTATE_H
 #define TESTS_MUTATE_H
 

@@ -287,6 +287,20 @@ START_TEST(arrays_grow_and_keep)
 }
 END_TEST
 
+/* What stood in an array before it was cut shorter does not come back. */
+START_TEST(a_new_element_is_zeroed_after_a_cut)
+{
+    struct arena *a = arena_new(NULL);
+    ARRAY(uint64_t) xs = {0};
+    *array_push(a, &xs) = 2385;
+    *array_push(a, &xs) = 2386;
+    xs.n--;
+    ck_assert_uint_eq(*array_push(a, &xs), 0);
+    ck_assert_uint_eq(xs.at[0], 2385);
+    arena_free(a);
+}
+END_TEST
+
 START_TEST(map_keeps_order_and_replaces)
 {
     struct arena *a = arena_new(NULL);
@@ -387,6 +401,7 @@ Suite *suite_arena(void)
     tcase_add_test(t, a_failed_defer_releases_at_once);
     tcase_add_test(t, text_that_cannot_be_formatted);
     tcase_add_test(t, arrays_grow_and_keep);
+    tcase_add_test(t, a_new_element_is_zeroed_after_a_cut);
     tcase_add_test(t, map_keeps_order_and_replaces);
     tcase_add_test(t, map_is_whole_after_a_failure);
     tcase_add_test(t, generator_repeats);

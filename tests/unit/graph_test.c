@@ -137,13 +137,15 @@ static double slope(const struct example *e, size_t i)
     return (y[0] - 8 * y[1] + 8 * y[2] - y[3]) / (12 * h);
 }
 
-/* Where a difference says nothing: sums that cancel, and the ends of an annuity in
- * whole years or at 0. */
+/* Where a difference says nothing: sums that cancel, the ends of an annuity in whole years
+ * or at 0, and a mean over nothing, which has a rule and no slope. */
 static bool is_smooth(const struct example *e, size_t i)
 {
     for (size_t k = 0; k < e->n; k++)
         if (fabs(e->x[k]) > 1e6)
             return false;
+    if (e->op == OP_RATIO && e->x[1] == 0)
+        return false;
     return e->op != OP_ANNUITY || i == 0 || e->x[i] != floor(e->x[i]);
 }
 
@@ -332,6 +334,30 @@ START_TEST(equal_nodes_are_one)
     ck_assert_uint_ne(con(0.0), con(-0.0));
     ck_assert_uint_eq(con(NAN), con(NAN));
     ck_assert_uint_ne(graph_const(g, 2.385, metre), con(2.385));
+}
+END_TEST
+
+/* What is equal by chance keeps apart, what has one number is one, and what is elsewhere or
+ * has an identity of its own stays. */
+START_TEST(apart_by_number)
+{
+    node_id plain = con(2.385), input = in(3), sum = graph_op2(g, OP_ADD, plain, input);
+    node_id one = graph_apart(g, plain, 1), two = graph_apart(g, plain, 2);
+    ck_assert_uint_ne(one, plain);
+    ck_assert_uint_ne(two, plain);
+    ck_assert_uint_ne(one, two);
+    ck_assert_uint_eq(graph_apart(g, plain, 1), one);
+    ck_assert_uint_eq(con(2.385), plain);
+    ck_assert_double_eq(graph_at(g, two)->constant, 2.385);
+    node_id other = graph_apart(g, sum, 1);
+    ck_assert_uint_ne(other, sum);
+    ck_assert_uint_eq(graph_args(g, other)[0], plain);
+    ck_assert_uint_eq(graph_args(g, other)[1], input);
+    ck_assert_uint_eq(graph_op2(g, OP_ADD, plain, input), sum);
+    ck_assert_uint_eq(graph_apart(g, input, 1), input);
+    graph_section_end(g);
+    graph_section_begin(g, 1);
+    ck_assert_uint_eq(graph_apart(g, sum, 7), sum);
 }
 END_TEST
 
@@ -596,6 +622,7 @@ static Suite *graph_suite(void)
     tcase_add_test(t, annuity_refuses_what_has_no_value);
     tcase_add_test(t, unit_rules);
     tcase_add_test(t, equal_nodes_are_one);
+    tcase_add_test(t, apart_by_number);
     tcase_add_test(t, many_equal_nodes_are_one);
     tcase_add_test(t, operations_on_constants_stay);
     tcase_add_test(t, sections_are_ranges);

@@ -93,8 +93,8 @@ void sheet_expect(struct sheet *s, uint32_t line, uint32_t column, ...)
     ck_assert_msg(s->diags.count == 1, "%zu diagnostics", s->diags.count);
     const struct diag *d = &s->diags.list.at[0];
     const char *found = diag_line(s->arena, d);
-    ck_assert_msg(d->place.line == line && d->place.column == column, "expected at %u:%u: %s",
-                  line, column, found);
+    ck_assert_msg(d->place.line == line && d->place.column == column, "expected at %u:%u: %s", line,
+                  column, found);
     va_start(words, column);
     for (const char *word; (word = va_arg(words, const char *)) != NULL;)
         ck_assert_msg(strstr(d->text, word), "expected \"%s\": %s", word, found);

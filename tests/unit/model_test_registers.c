@@ -85,7 +85,8 @@ START_TEST(random_registers_are_stable)
 {
     for (uint64_t seed = 0; seed < SEEDS; seed++) {
         struct sheet s = sheet_new();
-        struct model_sources sources = sources_of(&s, random_register(s.arena, seed, &register_small));
+        struct model_sources sources =
+            sources_of(&s, random_register(s.arena, seed, &register_small));
         struct model *m = model_load(s.arena, sources.at, sources.n, &s.diags);
         if (!m)
             fprintf(stderr, "seed %u\n", (unsigned)seed);

@@ -134,7 +134,7 @@ START_TEST(a_name_that_is_taken_is_refused)
     const char *path = test_path(a, "quay.ohmen");
     ohmen_error e = OHMEN_ERROR_INIT;
     MUST(store_create(path, &e), &e);
-    ck_assert_int_eq(store_create(path, &e), OHMEN_INPUT);
+    ck_assert_int_eq(store_create(path, &e), OHMEN_IO);
     ck_assert_ptr_nonnull(strstr(e.text, "exists"));
     ohmen_error no_folder = OHMEN_ERROR_INIT;
     ck_assert_int_eq(store_create(test_path(a, "none/quay.ohmen"), &no_folder), OHMEN_IO);

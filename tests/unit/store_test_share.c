@@ -156,7 +156,7 @@ START_TEST(a_backup_replaces_nothing)
     const char *path;
     ohmen_error e = OHMEN_ERROR_INIT;
     struct store *s = test_register(a, &path);
-    ck_assert_int_eq(store_backup(s, path, &e), OHMEN_INPUT);
+    ck_assert_int_eq(store_backup(s, path, &e), OHMEN_IO);
     ck_assert_ptr_nonnull(strstr(e.text, "exists"));
     test_is_sound(s);
     arena_free(a);

@@ -1,0 +1,15 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Times of repeated runs: each measured side by side with the others, in turn, so that
+ * whatever else the machine does meets all of them; the median is told. */
+#ifndef TESTS_BENCH_MEDIAN_H
+#define TESTS_BENCH_MEDIAN_H
+
+#define RUNS 11
+
+/* Milliseconds of a clock that never goes back. */
+double bench_now(void);
+
+/* The median of RUNS times; sorts them. */
+double bench_median(double times[RUNS]);
+
+#endif

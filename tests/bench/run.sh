@@ -1,0 +1,21 @@
+#!/bin/sh
+# SPDX-License-Identifier: GPL-3.0-or-later
+# Prints how long things take, each the median of 11 runs beside a reference.
+#
+#   tests/bench/run.sh [BUILD]
+#
+# BUILD is a build folder, build/gcc where none is named.
+set -eu
+
+source=$(cd "$(dirname "$0")/../.." && pwd -P)
+build=${1:-$source/build/gcc}
+ohmen=$build/src/cli/ohmen
+work=$(mktemp -d)
+trap 'rm -rf "$work"' EXIT
+trap 'exit 130' INT TERM
+
+"$ohmen" -r "$work/skerry.ohmen" new >"$work/out"
+"$ohmen" -r "$work/skerry.ohmen" import "$source"/samples/skerry/*.yaml \
+    "$source/samples/skerry/observations.csv" --why 'First survey' --by 'A. Lindqvist' >"$work/out"
+"$build/tests/bench/start" "$ohmen" "$build/tests/bench/empty" "$work/skerry.ohmen"
+"$build/tests/bench/load" 10000

@@ -1,0 +1,85 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* How much is compiled: fifty options that change one hazard of ten thousand cost fifty
+ * sections, not fifty registers. */
+#include "figure_test.h"
+#include "loaded.h"
+
+enum { HAZARDS = 10000, OPTIONS = 50, CHANGED = 5000 };
+
+/* Each hazard has an element and a scheme of its own. */
+static const char *large_register(struct arena *a)
+{
+    struct text t;
+    text_init(&t, a);
+    text_add(&t, "register: {title: Large, currency: EUR, prices: 2026, horizon: 20 a, discount: "
+                 "4 % per a}\nelements:\n");
+    for (int i = 0; i < HAZARDS; i++)
+        text_printf(&t, "  E-%d: {kind: relay, per-demand: %de-6}\n", i, i % 900 + 1);
+    text_add(&t, "schemes:\n");
+    for (int i = 0; i < HAZARDS; i++)
+        text_printf(&t, "  S-%d: {all: [E-%d]}\n", i, i);
+    text_add(&t, "hazards:\n");
+    for (int i = 0; i < HAZARDS; i++)
+        text_printf(&t,
+                    "  H-%d: {name: Hazard, frequency: 0.02 per a, response: {main: {cleared-by: "
+                    "S-%d, in: 0.1 s, outcome: none}, never: {outcome: lost}}, outcomes: {lost: "
+                    "{name: Lost, damage: {repair: {category: equipment, is: %d EUR}}}}}\n",
+                    i, i, i + 1);
+    text_add(&t, "options:\n");
+    for (int i = 0; i < OPTIONS; i++)
+        text_printf(&t,
+                    "  O-%d: {name: Option, change: {hazards: {H-%d: {frequency: 0.9 * was}}}}\n",
+                    i, CHANGED);
+    return text_str(&t);
+}
+
+static void compile_all(struct loaded *l)
+{
+    const struct variant *base = loaded_variant(l, 0, NULL);
+    for (size_t i = 0; i < l->model->of[KIND_HAZARD].n; i++)
+        loaded_compile(l, base, l->model->of[KIND_HAZARD].at[i]->id);
+}
+
+/* Under one option: one new unit in one new section; others are what they were. */
+static void compile_changed(struct loaded *l, const char *option, double risk)
+{
+    struct graph *g = l->figures->graph;
+    size_t sections = graph_sections(g), units = l->figures->units.n;
+    const char *changed = arena_printf(l->arena, "H-%d", CHANGED);
+    const struct variant *v = loaded_variant(l, 1, &option);
+    const struct compiled *u = loaded_compile(l, v, changed);
+    ck_assert_uint_eq(graph_sections(g), sections + 1);
+    ck_assert_uint_eq(l->figures->units.n, units + 1);
+    ck_assert_ptr_eq(u, loaded_compile(l, v, changed));
+    ck_assert_ptr_eq(loaded_compile(l, v, "H-4999"),
+                     loaded_compile(l, loaded_variant(l, 0, NULL), "H-4999"));
+    ck_assert_uint_eq(graph_sections(g), sections + 1);
+    loaded_evaluate(l);
+    ck_assert_double_eq_tol(figure_value(l->figures, u->main), 0.9 * risk, 1e-13 * risk);
+}
+
+START_TEST(only_what_changes_is_compiled)
+{
+    struct arena *a = arena_new(NULL);
+    struct loaded l;
+    loaded_text(&l, a, large_register(a), NULL);
+    compile_all(&l);
+    size_t sections = graph_sections(l.figures->graph), units = l.figures->units.n;
+    ck_assert_uint_eq(units, 2 * HAZARDS); /* a hazard and its element */
+    double risk = loaded_value(&l, "H-5000.risk");
+    ck_assert_double_eq_tol(risk, 0.02 * 501e-6 * 5001, 1e-13 * risk);
+    for (size_t i = 0; i < l.model->of[KIND_OPTION].n; i++)
+        compile_changed(&l, l.model->of[KIND_OPTION].at[i]->id, risk);
+    ck_assert_uint_eq(graph_sections(l.figures->graph), sections + OPTIONS);
+    ck_assert_uint_eq(l.figures->units.n, units + OPTIONS);
+    arena_free(a);
+}
+END_TEST
+
+TCase *figure_count_case(void)
+{
+    TCase *t = tcase_create("counts");
+    tcase_set_timeout(t, 60);
+    tcase_add_test(t, only_what_changes_is_compiled);
+    return t;
+}

@@ -1,0 +1,246 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Every formula that a figure prints, evaluated by the evaluator of tests/lib from the
+ * figures that it names, gives that figure: over the sample and random registers, the base
+ * and the variant of each option. */
+#include <check.h>
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include "base/file.h"
+#include "doc/yaml.h"
+#include "decide/weigh.h"
+#include "formula.h"
+#include "model/documents.h"
+#include "registers.h"
+
+static const char *root_folder;
+
+struct counted {
+    size_t formulas, leaves, probabilities;
+};
+
+static const struct model *load(struct arena *a, size_t n, const struct node *const *roots)
+{
+    struct diags d;
+    struct model_sources nothing = {0}, sources = {0};
+    diags_init(&d, a);
+    const struct model *m = NULL;
+    if (documents_merge(a, &nothing, n, roots, &sources, &d))
+        m = model_load(a, sources.at, sources.n, &d);
+    ck_assert_msg(m, "%s", d.count ? diag_line(a, &d.list.at[0]) : "not loaded");
+    return m;
+}
+
+/* --- compiling everything --- */
+
+static void compile_under(struct figures *f, const struct variant *v, const struct model *m)
+{
+    static const enum kind computed[] = {KIND_VALUE,   KIND_RATE,   KIND_TYPE,
+                                         KIND_ELEMENT, KIND_SCHEME, KIND_HAZARD};
+    for (size_t k = 0; k < sizeof computed / sizeof *computed; k++)
+        for (size_t i = 0; i < m->of[computed[k]].n; i++) {
+            const struct compiled *u;
+            ohmen_error e = OHMEN_ERROR_INIT;
+            const char *id = m->of[computed[k]].at[i]->id;
+            if (!model_find(v->model, id))
+                continue;
+            ohmen_status status = figures_compile(f, v, id, &u, &e);
+            ck_assert_msg(status == OHMEN_OK, "%s: %s", id, e.text);
+        }
+}
+
+static void compile_all(struct figures *f, const struct model *m)
+{
+    const struct variant *v;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    ck_assert_int_eq(figures_variant(f, 0, NULL, &v, &e), OHMEN_OK);
+    compile_under(f, v, m);
+    for (size_t i = 0; i < m->of[KIND_OPTION].n; i++) {
+        const char *option = m->of[KIND_OPTION].at[i]->id;
+        ck_assert_int_eq(figures_variant(f, 1, &option, &v, &e), OHMEN_OK);
+        compile_under(f, v, m);
+    }
+    for (size_t i = 0; i < m->of[KIND_DECISION].n; i++) {
+        struct weighing *w;
+        ohmen_status status = weigh_compile(f, m->of[KIND_DECISION].at[i]->id, &w, &e);
+        ck_assert_msg(status == OHMEN_OK, "%s", e.text);
+    }
+    ohmen_status status = figures_evaluate(f, &e);
+    ck_assert_msg(status == OHMEN_OK, "%s", e.text);
+}
+
+/* --- one formula --- */
+
+/* The names that the formula itself lists; nothing else may be needed. */
+static struct formula_inputs inputs_of(struct figures *f, struct arena *a, figure_id id)
+{
+    struct figure_ids ids = {0};
+    figure_inputs(f, a, id, &ids);
+    const char **names = NEW_ARRAY(a, ids.n, const char *);
+    double *values = NEW_ARRAY(a, ids.n, double);
+    for (size_t i = 0; i < ids.n; i++) {
+        names[i] = figure_name(f, a, ids.at[i]);
+        values[i] = figure_value(f, ids.at[i]);
+    }
+    return (struct formula_inputs){ids.n, names, values};
+}
+
+static void expect_formula(struct figures *f, struct arena *a, figure_id id, struct counted *c)
+{
+    const struct units *u = &f->base->units;
+    const char *formula = figure_formula(f, a, id), *name = figure_name(f, a, id);
+    struct formula_inputs inputs = inputs_of(f, a, id);
+    const struct formula_world world = {u->currency, u->counts, u->n_counts, &inputs,
+                                        formula_find_input};
+    char error[FORMULA_ERROR];
+    long double x;
+    if (text_starts(formula, "mean(")) {
+        c->leaves++; /* a distribution: nothing to compute here */
+        return;
+    }
+    ck_assert_msg(formula_evaluate(formula, &world, &x, error), "%s = %.2000s: %s", name, formula,
+                  error);
+    double y = figure_value(f, id);
+    ck_assert_msg(fabsl(x - y) <= 1e-12L * fabsl(x) + 1e-300L, "%s = %.2000s: %.17Lg, figure %.17g",
+                  name, formula, x, y);
+    c->formulas++;
+    c->probabilities += strstr(formula, "probability(") != NULL;
+}
+
+static void expect_all(struct arena *a, const struct model *m, const char *perspective,
+                       struct counted *c)
+{
+    struct figures *f;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    ck_assert_int_eq(figures_new(a, m, perspective, &f, &e), OHMEN_OK);
+    compile_all(f, m);
+    for (figure_id id = 0; id < f->list.n; id++) {
+        struct arena *scratch = arena_child(a);
+        expect_formula(f, scratch, id, c);
+        arena_free(scratch);
+    }
+}
+
+/* --- tests --- */
+
+static const char *source_file(struct arena *a, const char *path)
+{
+    char *text;
+    size_t n;
+    path = arena_printf(a, "%s/%s", root_folder, path);
+    ck_assert_int_eq(file_read(a, path, 1u << 20, &text, &n, NULL), OHMEN_OK);
+    return text;
+}
+
+static const struct model *load_sample(struct arena *a)
+{
+    static const char *const files[] = {"register", "network", "hazards", "options", "decisions"};
+    struct diags d;
+    const struct node *roots[5];
+    diags_init(&d, a);
+    for (int i = 0; i < 5; i++) {
+        const char *path = arena_printf(a, "samples/skerry/%s.yaml", files[i]);
+        const char *text = source_file(a, path);
+        roots[i] = yaml_read(a, path, text, strlen(text), &d);
+    }
+    return load(a, 5, roots);
+}
+
+START_TEST(formulas_of_the_sample)
+{
+    struct arena *a = arena_new(NULL);
+    struct counted c = {0};
+    expect_all(a, load_sample(a), NULL, &c);
+    expect_all(a, load_sample(a), "company", &c);
+    ck_assert_uint_gt(c.formulas, 500);
+    ck_assert_uint_gt(c.probabilities, 50);
+    arena_free(a);
+}
+END_TEST
+
+START_TEST(formulas_of_random_registers)
+{
+    struct register_shape shape = register_small;
+    struct counted c = {0};
+    shape.stored = false;
+    for (uint64_t seed = 0; seed < 40; seed++) {
+        struct arena *a = arena_new(NULL);
+        const struct node *root = random_register(a, seed, &shape);
+        expect_all(a, load(a, 1, &root), NULL, &c);
+        arena_free(a);
+    }
+    ck_assert_uint_gt(c.formulas, 10000);
+    ck_assert_uint_gt(c.probabilities, 1000);
+}
+END_TEST
+
+/* --- docs/figures.md --- */
+
+START_TEST(page_has_every_property)
+{
+    struct arena *a = arena_new(NULL);
+    const char *page = source_file(a, "docs/figures.md");
+    for (int p = 0; p < PROPERTY_COUNT; p++) {
+        const char *row =
+            arena_printf(a, "\n| `%s` | %s | `", properties[p].word, properties[p].help);
+        ck_assert_msg(strstr(page, row), "docs/figures.md lacks the row%s", row);
+    }
+    arena_free(a);
+}
+END_TEST
+
+/* What stands between ` and ` at the end of a row of a table, or NULL. */
+static const char *example_in(struct arena *a, const char *line, size_t n)
+{
+    if (n < 5 || line[0] != '|' || strncmp(line + n - 3, "` |", 3) != 0)
+        return NULL;
+    size_t from = n - 4;
+    while (line[from] != '`')
+        from--;
+    return arena_strn(a, line + from + 1, n - 4 - from);
+}
+
+/* The examples are figures of the sample. */
+START_TEST(examples_of_the_page)
+{
+    struct arena *a = arena_new(NULL);
+    struct figures *f;
+    size_t count = 0;
+    ck_assert_int_eq(figures_new(a, load_sample(a), NULL, &f, NULL), OHMEN_OK);
+    for (const char *p = source_file(a, "docs/figures.md"); *p;) {
+        size_t n = strcspn(p, "\n");
+        const char *name = example_in(a, p, n);
+        p += n + (p[n] == '\n');
+        if (!name)
+            continue;
+        figure_id id;
+        ohmen_error e = OHMEN_ERROR_INIT;
+        ck_assert_msg(weigh_find(f, name, &id, &e) == OHMEN_OK, "%s: %s", name, e.text);
+        ck_assert_str_eq(figure_name(f, a, id), name);
+        count++;
+    }
+    ck_assert_uint_ge(count, PROPERTY_COUNT + 8);
+    arena_free(a);
+}
+END_TEST
+
+int main(int argc, char **argv)
+{
+    if (argc != 2)
+        return EXIT_FAILURE;
+    root_folder = argv[1];
+    Suite *s = suite_create("formulas of figures");
+    TCase *t = tcase_create("formulas");
+    tcase_set_timeout(t, 300);
+    tcase_add_test(t, formulas_of_the_sample);
+    tcase_add_test(t, formulas_of_random_registers);
+    tcase_add_test(t, page_has_every_property);
+    tcase_add_test(t, examples_of_the_page);
+    suite_add_tcase(s, t);
+    SRunner *sr = srunner_create(s);
+    srunner_run_all(sr, CK_NORMAL);
+    bool good = srunner_ntests_run(sr) > 0 && srunner_ntests_failed(sr) == 0;
+    srunner_free(sr);
+    return good ? EXIT_SUCCESS : EXIT_FAILURE;
+}

@@ -1,0 +1,256 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Every reading use case on the sample: the report is sound in all three forms, holds
+ * what it must, and the query decides what it is about. */
+#include <string.h>
+
+#include "json_check.h"
+#include "work_test.h"
+
+struct made {
+    struct arena *a;
+    ohmen_register *reg;
+};
+
+static struct made made_new(void)
+{
+    struct made m = {.a = test_arena()};
+    m.reg = test_open(test_skerry(m.a), OHMEN_READ);
+    return m;
+}
+
+static void made_end(struct made *m)
+{
+    ohmen_close(m->reg);
+    arena_free(m->a);
+}
+
+static const char *hazards(struct made *m, const ohmen_query *q)
+{
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_hazards(m->reg, q, &r, &e), &e);
+    return test_json(m->a, r);
+}
+
+static const char *list(struct made *m, const char *kind)
+{
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_list(m->reg, NULL, kind, &r, &e), &e);
+    return test_json(m->a, r);
+}
+
+static const char *show(struct made *m, const char *id)
+{
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_show(m->reg, NULL, id, &r, &e), &e);
+    return test_json(m->a, r);
+}
+
+static const char *grid(struct made *m, const char *decision)
+{
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_grid(m->reg, NULL, decision, &r, &e), &e);
+    return test_json(m->a, r);
+}
+
+static const char *weigh(struct made *m, const char *decision)
+{
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_weigh(m->reg, NULL, decision, &r, &e), &e);
+    return test_json(m->a, r);
+}
+
+START_TEST(hazards_are_ranked)
+{
+    struct made m = made_new();
+    const char *json = hazards(&m, NULL);
+    ck_assert_uint_eq(test_count(json, "{\"rank\": {"), 12);
+    ck_assert_ptr_nonnull(strstr(json, "\"hazard\": \"H-GU-CABLE\""));
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(a_site_leaves_only_its_hazards)
+{
+    struct made m = made_new();
+    ohmen_query q = ohmen_query_defaults();
+    q.site = "TQ";
+    const char *json = hazards(&m, &q);
+    ck_assert_uint_eq(test_count(json, "{\"rank\": {"), 4);
+    ck_assert_uint_eq(test_count(json, "\"hazard\": \"H-TQ-"), 4);
+    q.site = "VH"; /* TQ lies in VH */
+    json = hazards(&m, &q);
+    ck_assert_uint_eq(test_count(json, "{\"rank\": {"), 10);
+    ck_assert_uint_eq(test_count(json, "\"hazard\": \"H-TQ-"), 4);
+    ck_assert_uint_eq(test_count(json, "\"hazard\": \"H-GU-"), 0);
+    made_end(&m);
+}
+END_TEST
+
+/* The damage that counts differs; how often things happen does not. */
+START_TEST(perspectives_count_their_categories)
+{
+    struct made m = made_new();
+    ohmen_query q = ohmen_query_defaults();
+    const char *own = hazards(&m, NULL);
+    q.perspective = "society";
+    ck_assert_str_eq(hazards(&m, &q), own);
+    q.perspective = "company";
+    const char *company = hazards(&m, &q);
+    q.perspective = "all";
+    const char *all = hazards(&m, &q);
+    ck_assert_str_ne(company, own);
+    ck_assert_str_ne(all, own);
+    ck_assert_str_ne(all, company);
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(every_kind_is_listed)
+{
+    static const struct {
+        const char *kind;
+        size_t n;
+    } lists[] = {{"sources", 9},  {"sites", 3},    {"groups", 1},    {"values", 12},
+                 {"rates", 9},    {"types", 2},    {"elements", 25}, {"common-cause", 1},
+                 {"schemes", 11}, {"hazards", 12}, {"options", 10},  {"decisions", 3}};
+    struct made m = made_new();
+    for (size_t i = 0; i < sizeof lists / sizeof *lists; i++) {
+        const char *json = list(&m, lists[i].kind);
+        ck_assert_msg(test_count(json, "{\"id\": \"") == lists[i].n, "%s: %s", lists[i].kind, json);
+    }
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(every_object_is_shown)
+{
+    static const char *const sections[] = {"sources", "sites",   "groups",   "values",
+                                           "rates",   "types",   "elements", "common-cause",
+                                           "schemes", "hazards", "options",  "decisions"};
+    struct made m = made_new();
+    size_t shown = 0;
+    for (size_t i = 0; i < sizeof sections / sizeof *sections; i++) {
+        const char *mark = "{\"id\": \"", *s = list(&m, sections[i]);
+        while ((s = strstr(s, mark)) != NULL) {
+            s += strlen(mark);
+            show(&m, arena_strn(m.a, s, strcspn(s, "\"")));
+            shown++;
+        }
+    }
+    show(&m, "register");
+    ck_assert_uint_eq(shown, 98);
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(a_hazard_is_shown_with_its_ends_and_an_element_with_its_users)
+{
+    struct made m = made_new();
+    ck_assert_ptr_nonnull(strstr(show(&m, "H-VH-BUS1"), "never/no-fire"));
+    ck_assert_ptr_nonnull(strstr(show(&m, "VH-51A"), "VH-INC1"));
+    ck_assert_ptr_nonnull(strstr(show(&m, "VH-INC1"), "H-VH-BUS1"));
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(decisions_are_weighed)
+{
+    struct made m = made_new();
+    const char *json = weigh(&m, "D-VH-BUS");
+    ck_assert_ptr_nonnull(strstr(json, "\"key\": \"recommendation\""));
+    ck_assert_ptr_nonnull(strstr(json, "\"key\": \"cautions\""));
+    /* FIT-87B and FIT-BLOCK exclude each other; TQ-LINK requires TQ-ARC */
+    ck_assert_ptr_null(strstr(json, "FIT-87B+FIT-BF+FIT-BLOCK"));
+    json = weigh(&m, "D-TQ");
+    ck_assert_ptr_null(strstr(json, "\"D-TQ.total.TQ-LINK\""));
+    ck_assert_ptr_nonnull(strstr(json, "\"D-TQ.total.TQ-ARC+TQ-LINK\""));
+    weigh(&m, "D-GU");
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(grids_mark_each_hazard)
+{
+    struct made m = made_new();
+    const char *all = grid(&m, NULL);
+    ck_assert_uint_eq(test_count(all, "{\"label\": "), 12);
+    ck_assert_uint_eq(test_count(all, "\"from\": "), 0);
+    const char *one = grid(&m, "D-TQ");
+    ck_assert_uint_ge(test_count(one, "\"from\": \"1\""), 3);
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(the_whole_report)
+{
+    static const char *const parts[] = {"title-block", "summary", "hazards", "grid",
+                                        "inputs",      "sources", "cautions"};
+    struct made m = made_new();
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_report_all(m.reg, NULL, &r, &e), &e);
+    const char *json = test_json(m.a, r);
+    for (size_t i = 0; i < sizeof parts / sizeof *parts; i++)
+        ck_assert_msg(strstr(json, arena_printf(m.a, "{\"key\": \"%s\"", parts[i])) != NULL,
+                      "there is no block \"%s\"", parts[i]);
+    ck_assert_ptr_nonnull(strstr(json, "D-GU"));
+    ck_assert_ptr_nonnull(strstr(json, "2026-12-01T08:00:00Z"));
+    made_end(&m);
+}
+END_TEST
+
+/* Widths are clamped, and every writer may be asked again. */
+START_TEST(layouts)
+{
+    struct made m = made_new();
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_report_all(m.reg, NULL, &r, &e), &e);
+    ohmen_layout narrow = ohmen_layout_defaults(), least = narrow, wide = narrow, most = narrow;
+    narrow.width = 1;
+    least.width = 60;
+    wide.width = 100000;
+    most.width = 200;
+    ck_assert_str_eq(ohmen_report_text(r, &narrow), ohmen_report_text(r, &least));
+    ck_assert_str_eq(ohmen_report_text(r, &wide), ohmen_report_text(r, &most));
+    ck_assert_str_eq(ohmen_report_text(r, NULL), ohmen_report_text(r, NULL));
+    ck_assert_str_eq(ohmen_report_json(r), ohmen_report_json(r));
+    narrow.ascii = true;
+    for (const char *s = ohmen_report_text(r, &narrow); *s; s++)
+        ck_assert(*s == '\n' || (*s >= ' ' && *s <= '~'));
+    ohmen_report_free(r);
+    made_end(&m);
+}
+END_TEST
+
+START_TEST(the_schema_is_json)
+{
+    size_t bad;
+    const char *s = ohmen_document_schema();
+    ck_assert(json_check(s, strlen(s), &bad));
+    ck_assert_str_eq(ohmen_version(), "0.1.0");
+}
+END_TEST
+
+void work_report_tests(Suite *suite)
+{
+    TCase *t = tcase_create("reports");
+    tcase_set_timeout(t, 300);
+    tcase_add_test(t, hazards_are_ranked);
+    tcase_add_test(t, a_site_leaves_only_its_hazards);
+    tcase_add_test(t, perspectives_count_their_categories);
+    tcase_add_test(t, every_kind_is_listed);
+    tcase_add_test(t, every_object_is_shown);
+    tcase_add_test(t, a_hazard_is_shown_with_its_ends_and_an_element_with_its_users);
+    tcase_add_test(t, decisions_are_weighed);
+    tcase_add_test(t, grids_mark_each_hazard);
+    tcase_add_test(t, the_whole_report);
+    tcase_add_test(t, layouts);
+    tcase_add_test(t, the_schema_is_json);
+    suite_add_tcase(suite, t);
+}
