@@ -297,6 +297,13 @@ static double year_of(const struct register_settings *s, day d)
     return fmax(weigh_years(s, d) < year ? year - 1 : year, 0);
 }
 
+/* The year in which an option's investment is paid; the horizon's end or later: not within
+ * it. */
+static double year_of_investment(const struct worth *x, const struct option *o)
+{
+    return o->invest->on == DAY_NONE ? 0 : year_of(x->f->base->settings, o->invest->on);
+}
+
 /* Appends the present values of an option's investment and running cost. */
 static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
 {
@@ -305,8 +312,8 @@ static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
     const struct compiled *c = compiled_of(&x->b, id);
     figure_id invest = compiled_figure(x->f, c, PROPERTY_INVEST, NULL, NULL);
     figure_id running = compiled_figure(x->f, c, PROPERTY_RUNNING, NULL, NULL);
-    if (invest != FIGURE_NONE) {
-        double year = o->invest->on == DAY_NONE ? 0 : year_of(x->f->base->settings, o->invest->on);
+    if (invest != FIGURE_NONE && year_of_investment(x, o) < x->w->horizon) {
+        double year = year_of_investment(x, o);
         node_id node = figure_at(x->f, invest)->node;
         parts[(*n)++] =
             year == 0 ? node : graph_op2(g, OP_MULTIPLY, node, discount_factor(x, year));
@@ -322,11 +329,13 @@ static bool costs_something(const struct worth *x, const struct alternative *alt
 {
     const struct figures *f = x->f;
     for (size_t i = 0; i < alt->n; i++) {
+        const struct option *o = model_get(f->base, KIND_OPTION, alt->options[i]);
         const struct compiled *c = compiled_of(&x->b, alt->options[i]);
         figure_id invest = compiled_figure(f, c, PROPERTY_INVEST, NULL, NULL);
         figure_id running = compiled_figure(f, c, PROPERTY_RUNNING, NULL, NULL);
         struct service s = service_of(f, alt->options[i], x->w->horizon);
-        if (invest != FIGURE_NONE && figure_value(f, invest) != 0)
+        if (invest != FIGURE_NONE && year_of_investment(x, o) < x->w->horizon &&
+            figure_value(f, invest) != 0)
             return true;
         if (running != FIGURE_NONE && s.from < s.to && figure_value(f, running) != 0)
             return true;

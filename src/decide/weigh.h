@@ -10,7 +10,7 @@
  * - time runs in years from register.start (1 January of the year of the prices where
  *   it is left out); a date is its calendar years from there plus days / 365;
  * - an investment is paid at the start of its year of the horizon: (1 + r)^-floor(t), where
- *   the last day of a leap year still lies in that year;
+ *   the last day of a leap year still lies in that year; behind the horizon it is no cost;
  * - damage and running cost are paid in the middle of each year;
  * - an option changes the register from its in-service date until the end of its life or of
  *   the horizon; before and behind that the register is as the other options leave it;

@@ -14,8 +14,8 @@
 #include "report/number.h"
 
 enum {
-    ROOMY_PAGE = 80,    /* from here both labels of a decade of frequency share a line */
-    WIDEST_RISK = 12,   /* columns to the right for "100 kEUR/a" */
+    ROOMY_PAGE = 80,     /* from here both labels of a decade of frequency share a line */
+    WIDEST_RISK = 12,    /* columns to the right for "100 kEUR/a" */
     WIDEST_CURRENCY = 5, /* a longer name of the currency is left to the key */
     WIDE_DECADE = 4      /* columns of a decade that are worth more than units at the lines */
 };
@@ -26,9 +26,9 @@ struct frame {
     const char *currency; /* clean; "" when too long for the axes */
     size_t power, period; /* columns of the two labels of a frequency */
     bool roomy;
-    size_t gutter;        /* columns to the left of the axis */
-    bool long_risk;       /* labels of risk with their unit */
-    size_t risk;          /* columns of the widest label of risk */
+    size_t gutter;  /* columns to the left of the axis */
+    bool long_risk; /* labels of risk with their unit */
+    size_t risk;    /* columns of the widest label of risk */
 };
 
 static bool ascii(const struct frame *f)
@@ -115,8 +115,8 @@ static void measure(struct frame *f)
     /* two blanks more: the first amount is centred below the axis and reaches over it */
     f->gutter = larger(f->gutter, strlen("damage, ") + utf8_columns(f->currency) + 2) + 1;
     f->risk = widest_risk(f, true);
-    f->long_risk = f->risk <= WIDEST_RISK
-        && columns_left(f) / (g->damage_high - g->damage_low) >= WIDE_DECADE;
+    f->long_risk =
+        f->risk <= WIDEST_RISK && columns_left(f) / (g->damage_high - g->damage_low) >= WIDE_DECADE;
     if (!f->long_risk)
         f->risk = widest_risk(f, false);
     grid_plane_size(g, columns_left(f));

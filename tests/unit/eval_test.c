@@ -181,8 +181,8 @@ static node_id build_step(struct built *b, const struct step *s)
 {
     node_id args[MOST_ARGS];
     for (uint32_t i = 0; i < s->n; i++)
-        args[i] = s->is_constant[i] ? graph_const(b->g, s->constant[i], number)
-                                    : b->place[s->arg[i]];
+        args[i] =
+            s->is_constant[i] ? graph_const(b->g, s->constant[i], number) : b->place[s->arg[i]];
     if (s->op == OP_PICK)
         return graph_pick(b->g, graph_diagram(b->g, s->diagram, s->n, args), s->root);
     return graph_op(b->g, s->op, s->n, args);
@@ -290,16 +290,11 @@ static bool is_tame(const struct step *s, const double *x)
         if (x[i] > 0.9)
             return false;
     switch (s->op) {
-    case OP_SUBTRACT:
-        return x[0] > 1.5 * x[1];
-    case OP_EXP:
-        return x[0] < 2.5;
-    case OP_LOG:
-        return x[0] > 1.3;
-    case OP_ANNUITY:
-        return x[0] < 0.5 && x[1] < x[2];
-    default:
-        return true;
+    case OP_SUBTRACT: return x[0] > 1.5 * x[1];
+    case OP_EXP: return x[0] < 2.5;
+    case OP_LOG: return x[0] > 1.3;
+    case OP_ANNUITY: return x[0] < 0.5 && x[1] < x[2];
+    default: return true;
     }
 }
 
@@ -313,8 +308,9 @@ static bool is_fine(struct built *b, const struct step *s)
 
 /* NEGATE makes what no other step takes, so it comes in a pair: x - (-y). */
 static const enum graph_op drawn[] = {
-    OP_ADD, OP_SUBTRACT, OP_MULTIPLY, OP_DIVIDE, OP_RATIO, OP_NEGATE, OP_POWER, OP_COMPLEMENT, OP_SUM, OP_MIN,
-    OP_MAX, OP_EXP, OP_LOG, OP_SQRT, OP_LOOKUP, OP_ANNUITY, OP_PICK, OP_PICK,
+    OP_ADD,   OP_SUBTRACT,   OP_MULTIPLY, OP_DIVIDE,  OP_RATIO, OP_NEGATE,
+    OP_POWER, OP_COMPLEMENT, OP_SUM,      OP_MIN,     OP_MAX,   OP_EXP,
+    OP_LOG,   OP_SQRT,       OP_LOOKUP,   OP_ANNUITY, OP_PICK,  OP_PICK,
 };
 
 static void draw_step(struct random *r, struct recipe *recipe, struct built *b)
@@ -436,8 +432,8 @@ START_TEST(lowered_graphs_are_equal)
         count_ops(b.g, false, before);
         count_ops(g, true, after);
     }
-    static const enum graph_op macros[] = {OP_SUM, OP_LOOKUP, OP_COMPLEMENT, OP_ANNUITY, OP_DIAGRAM,
-                                           OP_PICK};
+    static const enum graph_op macros[] = {OP_SUM,     OP_LOOKUP,  OP_COMPLEMENT,
+                                           OP_ANNUITY, OP_DIAGRAM, OP_PICK};
     for (size_t i = 0; i < sizeof macros / sizeof *macros; i++) {
         ck_assert_msg(before[macros[i]] > 50, "%s: too few", graph_op_info(macros[i])->name);
         ck_assert_msg(after[macros[i]] == 0, "%s: left", graph_op_info(macros[i])->name);

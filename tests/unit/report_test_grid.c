@@ -250,8 +250,8 @@ static bool is_label_dot(const struct picture *p, int x, int y)
 static bool is_beside_label(const struct picture *p, int x, int y)
 {
     char before = cell_at(p, x - 1, y);
-    return cell_at(p, x + 1, y) == 'M' || (before >= '0' && before <= '9')
-        || (before == '.' && is_label_dot(p, x - 1, y));
+    return cell_at(p, x + 1, y) == 'M' || (before >= '0' && before <= '9') ||
+           (before == '.' && is_label_dot(p, x - 1, y));
 }
 
 /* Each decade of risk k: f * d = 10^k, so x - x0 = (y - y0) * wide / high: it falls. */
@@ -279,15 +279,14 @@ static void check_risk_labels(const struct picture *p)
 {
     for (int y = p->high; y < p->rows; y += p->high) {
         const char *line = p->lines.at[p->top + (size_t)y] + p->axis + 1 + (size_t)p->columns + 1;
-        ck_assert_int_eq(picture_exponent(line),
-                         p->damage_high + p->frequency_high - y / p->high);
+        ck_assert_int_eq(picture_exponent(line), p->damage_high + p->frequency_high - y / p->high);
     }
 }
 
 static bool near_symbol(const struct picture *p, int x, int y, char symbol)
 {
-    return cell_at(p, x, y) == symbol || cell_at(p, x, y - 1) == symbol
-        || cell_at(p, x, y + 1) == symbol;
+    return cell_at(p, x, y) == symbol || cell_at(p, x, y - 1) == symbol ||
+           cell_at(p, x, y + 1) == symbol;
 }
 
 static void check_criterion(const struct picture *p, const struct grid_line *l)
@@ -367,8 +366,8 @@ static void check_arrows(const struct picture *p)
         for (int x = 0; x < p->columns; x++)
             ck_assert(!is_head(cell_at(p, x, y)) || count_around(p, x, y, is_mark) > 0);
     for (size_t from = 0; from < g->marks.n; from++) {
-        const char *before = arena_printf(arena, "%s %s ->", t.n ? ";" : "Arrows:",
-                                          g->marks.at[from].label);
+        const char *before =
+            arena_printf(arena, "%s %s ->", t.n ? ";" : "Arrows:", g->marks.at[from].label);
         for (size_t i = 0; i < g->marks.n; i++) {
             if (g->marks.at[i].arrow_from != (int)from)
                 continue;
@@ -402,8 +401,8 @@ static void check_picture(const struct picture *p, unsigned width)
 /* The sign in ASCII for a character of the picture in UTF-8. */
 static char ascii_of(const char *s, size_t n)
 {
-    static const char *const signs[] = {"·.", "│|", "─-", "┤+", "└+", "┬+", "●*", "◆@",
-                                        "╲\\", "╱/", "↑^", "↓v", "←<", "→>"};
+    static const char *const signs[] = {"·.", "│|",  "─-", "┤+", "└+", "┬+", "●*",
+                                        "◆@", "╲\\", "╱/", "↑^", "↓v", "←<", "→>"};
     if (n == 1)
         return *s;
     for (size_t i = 0; i < sizeof signs / sizeof *signs; i++)

@@ -10,16 +10,38 @@
 #include "random.h"
 
 static const char *const nasty[] = {
-    "", " ", "   ", "plain", "H-BUS1", "two words", "\033[31mred\033[0m", "tab\tand\nnewline\r",
-    "\xe2\x80\xae right to left \xe2\x80\xac", "母線保護装置の不動作", "e\xcc\x81\xcc\x81 combined",
-    "\xcc\x81", "zero\xe2\x80\x8bwidth", "\xf0\x9f\x98\x80 face", "bad \xff\xc3 bytes", "é",
-    "-1", "=1+1", "a_very_long_word_without_any_blank_that_is_wider_than_most_columns_of_a_table",
+    "",
+    " ",
+    "   ",
+    "plain",
+    "H-BUS1",
+    "two words",
+    "\033[31mred\033[0m",
+    "tab\tand\nnewline\r",
+    "\xe2\x80\xae right to left \xe2\x80\xac",
+    "母線保護装置の不動作",
+    "e\xcc\x81\xcc\x81 combined",
+    "\xcc\x81",
+    "zero\xe2\x80\x8bwidth",
+    "\xf0\x9f\x98\x80 face",
+    "bad \xff\xc3 bytes",
+    "é",
+    "-1",
+    "=1+1",
+    "a_very_long_word_without_any_blank_that_is_wider_than_most_columns_of_a_table",
     "many short words that must be wrapped on to several lines since they cannot all stand on one",
-    "\x7f\xc2\x85", "wide 母 between", "1e5", "\xe2\x80\xa8separator", "soft\xc2\xadhyphen",
-    "母", "\xcc\x88母線", "!", "100 % \\u{1234} \"quoted\" 'x'"};
+    "\x7f\xc2\x85",
+    "wide 母 between",
+    "1e5",
+    "\xe2\x80\xa8separator",
+    "soft\xc2\xadhyphen",
+    "母",
+    "\xcc\x88母線",
+    "!",
+    "100 % \\u{1234} \"quoted\" 'x'"};
 
-static const double extremes[] = {0, -0.0, 1, 1e-12, 5e-324, 1.7976931348623157e308, -3.5e-7,
-                                  123456789, 0.9999999, 99950, -1e15};
+static const double extremes[] = {
+    0, -0.0, 1, 1e-12, 5e-324, 1.7976931348623157e308, -3.5e-7, 123456789, 0.9999999, 99950, -1e15};
 
 static const char *some_text(struct random *r)
 {
@@ -77,14 +99,15 @@ static void add_some_pairs(struct random *r, struct report *report)
             add_some_cell(r, report, row, false);
         else
             pair_number(report, row, some_number(r), some_text(r),
-                        (enum number_style)random_index(r, 6), NULL)->mark = some_text(r);
+                        (enum number_style)random_index(r, 6), NULL)
+                ->mark = some_text(r);
     }
 }
 
 static void add_some_grid(struct random *r, struct report *report)
 {
-    struct block *b = report_grid(report, "grid", some_text(r),
-                                  random_index(r, 2) ? "EUR" : some_text(r));
+    struct block *b =
+        report_grid(report, "grid", some_text(r), random_index(r, 2) ? "EUR" : some_text(r));
     size_t n = random_index(r, 12);
     for (size_t i = 0; i < n; i++) {
         struct grid_mark *m = grid_add_mark(report, b, some_text(r), some_text(r),
@@ -100,8 +123,10 @@ static void fill_at_random(struct random *r, struct report *report)
     for (size_t i = random_index(r, 6) + 1; i-- > 0;) {
         switch (random_index(r, 5)) {
         case 0: report_heading(report, (int)random_index(r, 3) + 1, some_text(r)); break;
-        case 1: report_note(report, "note", "%s %s\n  %s\n\n%s", some_text(r), some_text(r),
-                            some_text(r), some_text(r)); break;
+        case 1:
+            report_note(report, "note", "%s %s\n  %s\n\n%s", some_text(r), some_text(r),
+                        some_text(r), some_text(r));
+            break;
         case 2: add_some_pairs(r, report); break;
         case 3: add_some_table(r, report); break;
         case 4: add_some_grid(r, report); break;

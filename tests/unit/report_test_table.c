@@ -43,14 +43,13 @@ START_TEST(a_small_table)
     row_number(&report, row, -600, NULL);
     row_empty(&report, row);
     row_yes(&report, row, false);
-    static const char *const expected =
-        "Hazards\n"
-        "\n"
-        "Hazard    Frequency                Risk  Share  Late\n"
-        "                1/a              kEUR/a      %\n"
-        "----------------------------------------------------\n"
-        "H-1         2.94e-3  1 in 340 a  12.3 !  99.99   yes\n"
-        "H-22 new    0        never       -0.6     -       no\n";
+    static const char *const expected = "Hazards\n"
+                                        "\n"
+                                        "Hazard    Frequency                Risk  Share  Late\n"
+                                        "                1/a              kEUR/a      %\n"
+                                        "----------------------------------------------------\n"
+                                        "H-1         2.94e-3  1 in 340 a  12.3 !  99.99   yes\n"
+                                        "H-22 new    0        never       -0.6     -       no\n";
     ck_assert_str_eq(text_of(arena, &report, 80, true, false), expected);
 }
 END_TEST
@@ -144,7 +143,8 @@ START_TEST(texts_wrap_and_lose_nothing)
 {
     static const char *const words =
         "A description of what happens that is much longer than any page is wide, with "
-        "H-BUS1-NORTH in it, and with enough further words that even two hundred columns cannot hold it: the "
+        "H-BUS1-NORTH in it, and with enough further words that even two hundred columns cannot "
+        "hold it: the "
         "breaker of the incomer stays closed until the backup of the grid clears the fault.";
     struct block *b = report_table(&report, "t", NULL);
     block_column(&report, b, "id", "Id", "", STYLE_PLAIN);

@@ -63,11 +63,10 @@ START_TEST(sets_and_reasons)
     text_init(&t, a);
     for (size_t i = 0; i < w->left_out.n; i++)
         text_printf(&t, "%s: %s\n", w->left_out.at[i].options, w->left_out.at[i].why);
-    ck_assert_str_eq(text_str(&t),
-                     "C: C requires A\n"
-                     "F: F requires OUT\n"
-                     "A+B: A and B exclude each other\n"
-                     "C+E: C and E contradict each other at hazards/G/frequency\n");
+    ck_assert_str_eq(text_str(&t), "C: C requires A\n"
+                                   "F: F requires OUT\n"
+                                   "A+B: A and B exclude each other\n"
+                                   "C+E: C and E contradict each other at hazards/G/frequency\n");
     ck_assert(!w->only_pairs);
     arena_free(a);
 }
@@ -232,8 +231,8 @@ START_TEST(cost_behind_the_horizon)
               "options:\n"
               "  A: {name: A, invest: {is: nothing}, change: {hazards: {H: {frequency: 0.5 * "
               "was}}}}\n"
-              "  B: {name: B, in-service: 2060, running: 10 EUR per a, invest: {is: 0 EUR}, "
-              "change: {hazards: {G: {frequency: 0.5 * was}}}}\n"
+              "  B: {name: B, in-service: 2060, running: 10 EUR per a, invest: {is: 5 EUR, on: "
+              "2060}, change: {hazards: {G: {frequency: 0.5 * was}}}}\n"
               "decisions: {D: {question: What?, options: [A, B]}}\n");
     ck_assert_uint_eq(w->alternatives.n, 4);
     for (size_t i = 0; i < 4; i++)

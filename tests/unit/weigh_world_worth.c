@@ -136,7 +136,8 @@ static long double cost_of(const struct decision_world *w, const struct plan_opt
     if (o->invest >= 0) {
         int year = o->on.year ? o->on.year - first.year : 0;
         year -= o->on.year && day_of_year(o->on) < day_of_year(first);
-        cost += o->invest * factor(w, year < 0 ? 0 : year);
+        if (year < w->horizon) /* what is paid later is paid by somebody else's plan */
+            cost += o->invest * factor(w, year < 0 ? 0 : year);
     }
     if (o->running >= 0)
         cost += o->running * series(w, s.from, s.to);
