@@ -1,0 +1,32 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Time of a decision: years from the start of the horizon, when options are in service, and
+ * the stretches between. The conventions are those of weigh.h, which declares
+ * weigh_start and weigh_years. Private to src/decide. */
+#ifndef DECIDE_TIMELINE_H
+#define DECIDE_TIMELINE_H
+
+#include "decide/weigh.h"
+
+/* From when to when an option is in service, within the horizon. */
+struct service {
+    double from, to;
+};
+
+struct service timeline_service(const struct figures *f, const char *option, double horizon);
+
+/* A stretch of the horizon in which the same options are in service. */
+struct stretch {
+    double from, to;
+    const struct variant *variant;
+};
+struct stretches ARRAY_BODY(struct stretch);
+
+/* Cuts the horizon where options of the alternative come or go, in order of time. */
+ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double horizon,
+                          struct stretches *out, ohmen_error *e);
+
+/* The year of the horizon in which a day lies, from 0; what is paid before is paid at its
+ * start. By the calendar: the last day of a leap year lies in that year. */
+double timeline_year(const struct register_settings *s, day d);
+
+#endif
