@@ -46,7 +46,7 @@ const char *ohmen_version(void);
 typedef struct ohmen_register ohmen_register;
 typedef enum ohmen_mode { OHMEN_READ, OHMEN_WRITE } ohmen_mode;
 
-/* Creates an empty register file; an existing file is refused (OHMEN_INPUT). */
+/* Creates an empty register file; an existing file is refused (OHMEN_IO). */
 ohmen_status ohmen_create(const char *path, ohmen_error *e);
 
 /* OHMEN_REGISTER for what is no register, was written by a newer ohmen, or is
@@ -121,7 +121,7 @@ typedef enum ohmen_export_part {
 ohmen_status ohmen_export(ohmen_register *r, const ohmen_query *q, ohmen_export_part part,
                           ohmen_report **out, const char **text, ohmen_error *e);
 
-/* A copy while the register is in use; an existing file is refused (OHMEN_INPUT). */
+/* A copy while the register is in use; an existing file is refused (OHMEN_IO). */
 ohmen_status ohmen_backup(ohmen_register *r, const char *path, ohmen_error *e);
 
 /* --- reading a register --- */

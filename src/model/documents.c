@@ -189,6 +189,12 @@ static const struct node *original(struct merging *m, const struct entry *e,
     struct entry *from = itself ? NULL : strmap_get(&m->entries, like->text);
     if (!from || from->removed)
         from = strmap_get(&m->stored, like->text);
+    if (itself && !from) {
+        diag_add(m->diags, like->place,
+                 "\"%s\" is not in the register yet: only what is stored can be like itself",
+                 e->id);
+        return NULL;
+    }
     if (!from || from->kind != e->kind) {
         struct nearest near;
         nearest_init(&near, like->text);
@@ -259,6 +265,36 @@ static void find_units(struct merging *m, size_t n, const struct node *const *ro
     m->units = model_units(m->arena, settings);
     m->binding = (struct binding){.arena = m->arena, .units = &m->units, .diags = m->diags};
     m->rules = bind_patch_rules(&m->binding);
+}
+
+static void check_alone(struct merging *m, const struct entry *e)
+{
+    struct units standard = {.currency = m->units.currency};
+    struct binding b = m->binding;
+    struct node *canonical;
+    void *data;
+    if (e->removed || (e->node->type == NODE_MAP && node_get(e->node, "like")))
+        return;
+    if (e->kind == KIND_REGISTER)
+        b.units = &standard;
+    bind_object(&b, kinds[e->kind].table, e->node, &canonical, &data);
+}
+
+void documents_check_alone(struct arena *a, const struct model_sources *stored, size_t n,
+                           const struct node *const *roots, struct diags *d)
+{
+    struct merging m = {.arena = a, .diags = d};
+    bool settings = false;
+    remember_stored(&m, stored);
+    find_units(&m, n, roots);
+    for (size_t i = 0; i < n; i++)
+        settings = settings || node_get(roots[i], kinds[KIND_REGISTER].section);
+    if (!settings && !strmap_has(&m.stored, REGISTER_ID))
+        return;
+    for (size_t i = 0; i < n; i++)
+        add_document(&m, roots[i]);
+    for (size_t i = 0; i < m.entries.n; i++)
+        check_alone(&m, m.entries.at[i].value);
 }
 
 bool documents_merge(struct arena *a, const struct model_sources *stored, size_t n,

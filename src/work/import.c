@@ -102,6 +102,8 @@ static void check_result(struct importing *im)
     bool any = im->roots.n || im->stored.n;
     if (any && im->diags.count == 0)
         check_objects(im);
+    else if (any)
+        documents_check_alone(j->arena, &im->stored, im->roots.n, im->roots.at, &im->diags);
     bool wrong = im->diags.count > 0;
     const struct model *known = wrong ? NULL : j->model ? j->model : model_new(j->arena);
     for (size_t i = 0; i < im->lists.n; i++)

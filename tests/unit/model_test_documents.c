@@ -206,6 +206,17 @@ START_TEST(like_what_is_stored)
 }
 END_TEST
 
+/* What is stored can be like itself: only the fields that are named change. */
+START_TEST(like_itself)
+{
+    struct sheet s = sheet_new();
+    struct model_sources before = stored(&s), out = nothing();
+    ck_assert(merge(&s, &before, "elements: {E: {like: E, kind: relay}}", &out));
+    ck_assert(text_starts(listed(&s, &out),
+                          "element E {\"kind\":\"relay\",\"per-demand\":{\"is\":\"0.1\"}}\n"));
+}
+END_TEST
+
 START_TEST(like_that_is_wrong)
 {
     refused("sites:\n  ALPHA: {name: X}\n  B: {like: ALHPA}", 3, 13,
@@ -213,7 +224,7 @@ START_TEST(like_that_is_wrong)
     refused("sites:\n  A: {name: X}\nelements:\n  B: {like: A}", 4, 13,
             "there is no element \"A\" to start from");
     refused("sites:\n  A: {like: [B]}", 2, 13, "\"like\" names one object");
-    refused("sites:\n  A: {like: A}", 2, 13, "\"like\" leads in a circle");
+    refused("sites:\n  A: {like: A}", 2, 13, "\"A\" is not in the register yet");
     refused("schemes:\n  S: A\n  T: {like: S}", 3, 13, "\"S\" is written in one word");
 }
 END_TEST
@@ -251,6 +262,7 @@ Suite *suite_documents(void)
 {
     Suite *s = suite_create("documents");
     TCase *t = tcase_create("documents");
+    tcase_add_test(t, like_itself);
     tcase_add_test(t, sections);
     tcase_add_test(t, units_are_reserved);
     tcase_add_test(t, ids_that_stand_twice);

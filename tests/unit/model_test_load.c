@@ -172,10 +172,10 @@ END_TEST
 
 START_TEST(dimensions)
 {
-    wrong("sites: {A: {name: X, load: 3 h}}", 1, 28, "expected power for \"load\", found time");
+    wrong("sites: {A: {name: X, load: 3 h}}", 1, 28, "expected power such as 3 MW for \"load\", found time");
     wrong("values: {v: 2 h, w: v + 3 EUR}", 1, 23, "");
     wrong("values: {v: 2 h}\nsites: {A: {name: X, load: 3 * v}}", 2, 28,
-          "expected power for \"load\", found time");
+          "expected power such as 3 MW for \"load\", found time");
     wrong("rates: {r: {per: section a, is: 0.1 per a}}", 1, 33,
           "expected 1 / (section time), found 1 / time");
     wrong("rates: {r: {per: section, is: 0.1 per section}}", 1, 18, "a rate is per time too");
@@ -185,7 +185,7 @@ START_TEST(dimensions)
           2, 43, "expected");
     wrong(R HAZARD "    response: {x: {outcome: none}}\n"
                    "    outcomes: {o: {name: O, damage: {repair: {category: c, is: 3 h}}}}\n",
-          7, 64, "expected money for \"is\", found time");
+          7, 64, "expected money such as 40 kEUR for \"is\", found time");
     wrong("values: {v: clearance-time}", 1, 13, "clearance-time has a meaning only in the damage");
     struct sheet s;
     fine(&s, "rates: {r: {per: section a, is: 0.1 per section a}}\n"

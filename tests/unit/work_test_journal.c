@@ -122,7 +122,7 @@ START_TEST(a_backup_is_the_register)
     struct test_state before = test_state(reg);
     test_same_state(copy, &before);
     ck_assert_str_eq(hazards_as_of(a, copy, "2"), hazards_as_of(a, reg, "2"));
-    ck_assert_int_eq(ohmen_backup(open, copy, &e), OHMEN_INPUT); /* it exists */
+    ck_assert_int_eq(ohmen_backup(open, copy, &e), OHMEN_IO); /* it exists */
     test_same_state(copy, &before);
     ohmen_close(open);
     arena_free(a);
