@@ -86,8 +86,8 @@ bool formula_number(struct reader *r, long double *out)
             exponent = exponent > 9999 ? exponent : 10 * exponent + (*r->p - '0');
         exponent = negative ? -exponent : exponent;
     }
-    *out =
-        exponent + scale < 0 ? x / powl(10, -(exponent + scale)) : x * powl(10, exponent + scale);
+    x = exponent + scale < 0 ? x / powl(10, -(exponent + scale)) : x * powl(10, exponent + scale);
+    *out = (double)x; /* what is printed is a double: a difference of two is exact only so */
     return true;
 }
 
