@@ -172,7 +172,8 @@ END_TEST
 
 START_TEST(dimensions)
 {
-    wrong("sites: {A: {name: X, load: 3 h}}", 1, 28, "expected power such as 3 MW for \"load\", found time");
+    wrong("sites: {A: {name: X, load: 3 h}}", 1, 28,
+          "expected power such as 3 MW for \"load\", found time");
     wrong("values: {v: 2 h, w: v + 3 EUR}", 1, 23, "");
     wrong("values: {v: 2 h}\nsites: {A: {name: X, load: 3 * v}}", 2, 28,
           "expected power such as 3 MW for \"load\", found time");
