@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* One object: all that it says, what is computed of it, and who refers to it. */
+#include <math.h>
 #include <string.h>
 
 #include "work/work.h"
@@ -259,12 +260,46 @@ static void part_users(struct job *j, const struct object *o)
 
 /* --- figures --- */
 
-static void figures_pairs(struct job *j, const struct compiled *c)
+/* The distribution behind a figure that is an input; NULL: it is a number or a formula. */
+static const struct quantity *distribution_of(const struct job *j, figure_id id)
+{
+    const struct graph_node *n = graph_at(j->figures->graph, figure_at(j->figures, id)->node);
+    return n->op == OP_INPUT ? j->figures->inputs.at[n->extra] : NULL;
+}
+
+static bool any_distribution(const struct job *j, const struct compiled *c)
+{
+    for (figure_id i = c->first; i < c->first + c->n; i++)
+        if (distribution_of(j, i))
+            return true;
+    return false;
+}
+
+/* The points of a distribution that knowledge is told by, in the unit of the mean shown. */
+static void quantile_cells(struct job *j, struct row *row, figure_id id, double shown)
+{
+    static const double levels[] = {0.05, 0.5, 0.95};
+    const struct quantity *q = distribution_of(j, id);
+    double scale = shown / figure_value(j->figures, id), x;
+    for (size_t i = 0; i < sizeof levels / sizeof *levels; i++)
+        if (q && isfinite(scale) && quantity_quantile(q, levels[i], &x, NULL) == OHMEN_OK)
+            row_number(j->report, row, x * scale, NULL);
+        else
+            row_empty(j->report, row);
+}
+
+static void figures_table(struct job *j, const struct compiled *c)
 {
     struct report *r = j->report;
+    bool uncertain = any_distribution(j, c);
     struct block *b = report_table(r, "figures", "Figures");
     block_column(r, b, "figure", "Figure", "", STYLE_PLAIN);
-    block_column(r, b, "value", "Value", "", STYLE_PLAIN);
+    block_column(r, b, "value", uncertain ? "Mean" : "Value", "", STYLE_PLAIN);
+    if (uncertain) {
+        block_column(r, b, "p5", "5 %", "", STYLE_PLAIN)->keep = 1;
+        block_column(r, b, "p50", "50 %", "", STYLE_PLAIN)->keep = 2;
+        block_column(r, b, "p95", "95 %", "", STYLE_PLAIN)->keep = 1;
+    }
     block_column(r, b, "unit", "Unit", "", STYLE_PLAIN);
     for (figure_id i = c->first; i < c->first + c->n; i++) {
         struct row *row = block_row(r, b);
@@ -273,6 +308,8 @@ static void figures_pairs(struct job *j, const struct compiled *c)
         const char *unit = figure_display(j, i, &shown);
         row_text(r, row, name);
         row_number(r, row, shown, name);
+        if (uncertain)
+            quantile_cells(j, row, i, shown);
         row_text(r, row, unit);
     }
 }
@@ -354,7 +391,7 @@ static void part_figures(struct job *j, const struct compiled *c)
     if (c->n == 0)
         return;
     if (c->object->kind != KIND_HAZARD) {
-        figures_pairs(j, c);
+        figures_table(j, c);
         return;
     }
     hazard_pairs(j, c);
