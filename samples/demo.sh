@@ -36,15 +36,12 @@ if ! { [ -f build/demo/build.ninja ] || meson setup build/demo --buildtype=relea
 fi
 ohmen=build/demo/src/cli/ohmen
 
-if [ -n "$keep" ]; then
-    register=$keep
-else
-    folder=$(mktemp -d)
-    trap 'rm -rf "$folder"' EXIT
-    trap 'exit 130' INT TERM
-    register=$folder/$sample.ohmen
-fi
-"$ohmen" -r "$register" new
-"$ohmen" -r "$register" import samples/$sample/*.yaml --why "The sample, as delivered"
+folder=$(mktemp -d)
+trap 'rm -rf "$folder"' EXIT
+trap 'exit 130' INT TERM
+register=${keep:-$folder/$sample.ohmen}
+"$ohmen" -r "$register" new >"$folder/new"
+"$ohmen" -r "$register" import samples/$sample/*.yaml --why "The sample, as delivered" >"$folder/import"
+tail -n 1 "$folder/import" # what was added stands above it
 "$ohmen" -r "$register" report
 [ -z "$keep" ] || echo "The register is in $keep." >&2
