@@ -91,6 +91,8 @@ typedef struct ohmen_query {
                                 every category */
     const char *site;        /* only hazards (of a list: objects) at this site and the sites in
                                 it; NULL: all. A decision is about all hazards that it reaches */
+    const char *date;        /* the day of evaluation, YYYY-MM-DD, until which evidence accrues;
+                                NULL: today (UTC). What the journal knew is another question */
 } ohmen_query;
 ohmen_query ohmen_query_defaults(void);
 

@@ -29,6 +29,10 @@ const struct option options[OPTION_COUNT] = {
     [OPTION_PERSPECTIVE] = {"perspective", 0, VALUE_TEXT, "NAME",
                             .help = "whose damage counts: a perspective of the register, or all "
                                     "for every category; else the register's own choice"},
+    [OPTION_DATE] = {"date", 0, VALUE_TEXT, "DATE",
+                     .help = "the day of evaluation, such as 2027-06-30, until which exposure "
+                             "accrues; else today (UTC). It changes nothing of what the journal "
+                             "knew: see --as-of"},
     [OPTION_SITE] = {"site", 0, VALUE_TEXT, "ID",
                      .help = "only the hazards (of a list: the objects) at this site and at the "
                              "sites in it"},

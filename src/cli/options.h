@@ -18,6 +18,7 @@ enum option_id {
     OPTION_COLOUR,
     OPTION_AS_OF,
     OPTION_PERSPECTIVE,
+    OPTION_DATE,
     OPTION_SITE,
     OPTION_WHY,
     OPTION_BY,

@@ -17,6 +17,7 @@ ohmen_query reading_query(const struct args *args)
     ohmen_query query = ohmen_query_defaults();
     query.as_of = args->text[OPTION_AS_OF];
     query.perspective = args->text[OPTION_PERSPECTIVE];
+    query.date = args->text[OPTION_DATE];
     query.site = args->text[OPTION_SITE];
     return query;
 }

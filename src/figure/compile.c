@@ -5,9 +5,7 @@
  * opened. */
 #include "figure/compile.h"
 
-#include <math.h>
-
-#include "math/elementary.h"
+#include "evidence/posterior.h"
 
 /* Objects may depend on objects this deep. */
 #define COMPILE_DEPTH 400
@@ -180,116 +178,24 @@ static ohmen_status compile_value(struct figures *f, const struct variant *v,
     return OHMEN_OK;
 }
 
-/* Does the form that a prior names, if it names one, go with the keys that it gives? */
-static bool form_fits(const struct prior *p)
-{
-    const char *form = p->form < 0 ? NULL : prior_forms[p->form];
-    if (p->p5 || p->p50 || p->p95 || p->p99 || (p->weight && p->error_factor) ||
-        (p->mean && p->median))
-        return false;
-    if (!form)
-        return true;
-    if (p->weight)
-        return text_equal(form, "gamma");
-    if (p->error_factor)
-        return text_equal(form, "lognormal");
-    return text_equal(form, "fixed") || text_equal(form, "constrained");
-}
-
-/* The distribution that a prior states, by the keys that it gives. NULL: a form that this
- * version does not evaluate. Lognormal with mean m: median m exp(-s^2/2), s = ln EF / z95. */
-static struct quantity *prior_distribution(struct arena *a, const struct prior *p)
-{
-    const double z95 = 1.6448536269514722;
-    struct quantity *q = NEW(a, struct quantity);
-    q->times = 1;
-    if (p->mean && p->weight) {
-        *q = (struct quantity){.shape = SHAPE_GAMMA,
-                               .p = {expr_constant(p->mean->expr), expr_constant(p->weight->expr)}};
-        q->text = arena_printf(a, "gamma with mean %s, weight %s", expr_reads(a, p->mean->expr),
-                               expr_reads(a, p->weight->expr));
-    } else if (p->median && p->error_factor) {
-        *q = (struct quantity){
-            .shape = SHAPE_LOGNORMAL,
-            .p = {expr_constant(p->median->expr), expr_constant(p->error_factor->expr), NAN}};
-        q->text = arena_printf(a, "median %s, error factor %s", expr_reads(a, p->median->expr),
-                               expr_reads(a, p->error_factor->expr));
-    } else if (p->mean && p->error_factor) {
-        double ef = expr_constant(p->error_factor->expr), s = math_log(ef) / z95;
-        *q = (struct quantity){.shape = SHAPE_LOGNORMAL,
-                               .p = {expr_constant(p->mean->expr) * math_exp(-s * s / 2), ef, NAN}};
-        q->text = arena_printf(a, "lognormal with mean %s, error factor %s",
-                               expr_reads(a, p->mean->expr), expr_reads(a, p->error_factor->expr));
-    } else {
-        return NULL;
-    }
-    q->times = 1;
-    q->dim = p->mean ? p->mean->dim : p->median->dim;
-    return q;
-}
-
-/* constrained (non-informative with a mean, shape 1/2: NASA/SP-2009-569) and fixed. */
-static struct quantity *prior_by_form(struct arena *a, const struct prior *p)
-{
-    const char *form = p->form < 0 ? "" : prior_forms[p->form];
-    if (!form_fits(p))
-        return NULL;
-    if (!p->mean || p->weight || p->error_factor)
-        return prior_distribution(a, p);
-    if (text_equal(form, "fixed"))
-        return p->mean;
-    if (!text_equal(form, "constrained"))
-        return NULL;
-    struct quantity *q = NEW(a, struct quantity);
-    *q = (struct quantity){.shape = SHAPE_GAMMA,
-                           .p = {expr_constant(p->mean->expr), 0.5},
-                           .times = 1,
-                           .dim = p->mean->dim};
-    q->text =
-        arena_printf(a, "constrained non-informative with mean %s", expr_reads(a, p->mean->expr));
-    return q;
-}
-
 static ohmen_status compile_rate(struct figures *f, const struct variant *v, const struct object *o,
                                  struct compiled **out, ohmen_error *e)
 {
     const struct rate *r = o->data;
-    const struct quantity *q = r->is ? r->is : prior_by_form(f->arena, r->prior);
-    if (!q)
-        return error_set(
-            e, OHMEN_COMPUTE,
-            "the prior of the rate \"%s\" is stored but not evaluated by this version, which "
-            "knows a mean with a weight, a mean or a median with an error factor, and the "
-            "forms constrained and fixed with a mean",
-            o->id);
+    const struct quantity *q;
+    ohmen_status status = posterior_rate(f->arena, r, o->id, f->date, &q, e);
+    if (status != OHMEN_OK)
+        return status;
     const char *source = r->prior && r->prior->source ? r->prior->source : r->source;
     *out = compile_main(f, v, o, PROPERTY_RATE, q, source);
     return OHMEN_OK;
-}
-
-/* Beta posterior of counts: a0 + failures, b0 + successes (conjugate; NASA/SP-2009-569). */
-static const struct quantity *record_quantity(struct arena *a, const struct demand_record *r)
-{
-    if (r->is)
-        return r->is;
-    double prior = text_equal(demand_priors[r->prior], "jeffreys") ? 0.5 : 1;
-    struct quantity *q = NEW(a, struct quantity);
-    *q = (struct quantity){
-        .shape = SHAPE_BETA,
-        .p = {prior + (double)r->failures, prior + (double)(r->demands - r->failures)},
-        .times = 1};
-    q->text =
-        arena_printf(a, "%s prior with %lld failure%s in %lld demand%s", demand_priors[r->prior],
-                     (long long)r->failures, r->failures == 1 ? "" : "s", (long long)r->demands,
-                     r->demands == 1 ? "" : "s");
-    return q;
 }
 
 static ohmen_status compile_record(struct figures *f, const struct variant *v,
                                    const struct object *o, const struct demand_record *r,
                                    const char *source, struct compiled **out, ohmen_error *e)
 {
-    const struct quantity *q = record_quantity(f->arena, r);
+    const struct quantity *q = posterior_demands(f->arena, r);
     (void)e;
     *out = compile_main(f, v, o, PROPERTY_FAILS, q, r->source ? r->source : source);
     return OHMEN_OK;

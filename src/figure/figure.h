@@ -88,6 +88,7 @@ struct figures {
     const struct model *base;
     const char *perspective;        /* NULL: every category */
     const struct names *categories; /* of the perspective; NULL: every category */
+    day date;                       /* of evaluation: evidence accrues until then */
     struct graph *graph;
     struct eval *eval;
     ARRAY(struct figure) list;
@@ -103,9 +104,9 @@ struct figures {
 };
 
 /* perspective: "all" or NULL for every category; otherwise it must exist
- * (OHMEN_UNKNOWN with the nearest name). */
+ * (OHMEN_UNKNOWN with the nearest name). date: of evaluation. */
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
-                         struct figures **out, ohmen_error *e);
+                         day date, struct figures **out, ohmen_error *e);
 
 /* The variant of a set of options, in any order. OHMEN_UNKNOWN for what is no option or
  * stands twice, OHMEN_COMPUTE when they contradict or leave the register wrong: the message

@@ -32,11 +32,12 @@ static ohmen_status find_perspective(struct figures *f, const char *name, ohmen_
 }
 
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
-                         struct figures **out, ohmen_error *e)
+                         day date, struct figures **out, ohmen_error *e)
 {
     struct figures *f = NEW(a, struct figures);
     f->arena = a;
     f->base = base;
+    f->date = date;
     f->graph = graph_new(a);
     f->eval = eval_new(a, f->graph);
     const char *wanted = perspective ? perspective : base->settings->perspective;

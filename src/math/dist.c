@@ -301,6 +301,8 @@ static const struct {
                          triangular_quantile},
     [DIST_PERT] = {pert_mean, pert_variance, pert_cdf, pert_quantile},
     [DIST_DISCRETE] = {discrete_mean, discrete_variance, discrete_cdf, discrete_quantile},
+    [DIST_COUNTED] = {dist_counted_mean, dist_counted_variance, dist_counted_cdf,
+                      dist_counted_quantile},
 };
 
 double dist_mean(const struct dist *d)

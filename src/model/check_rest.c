@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Settings, rates, elements and options. States and decisions are in check_decide.c. */
+/* Settings, elements and options. Rates are in check_rate.c, states
+ * and decisions in check_decide.c. */
 #include "model/check.h"
 
 #include <math.h>
@@ -65,60 +66,6 @@ void check_settings(struct checking *c, const struct object *o)
         check_limits(c, m->acceptable_below, m->intolerable_above, node_get(criteria, "money"));
     if (p)
         check_limits(c, p->acceptable_below, p->intolerable_above, node_get(criteria, "people"));
-}
-
-/* --- rates --- */
-
-static void expect_dim(struct checking *c, const struct quantity *q, struct dim want,
-                       const struct node *node)
-{
-    if (q && !dim_equal(q->dim, want))
-        diag_add(c->diags, node->place, "expected %s, found %s",
-                 dim_words(c->arena, &c->model->units, want),
-                 dim_words(c->arena, &c->model->units, q->dim));
-}
-
-static void check_prior(struct checking *c, const struct prior *p, const struct node *node,
-                        struct dim want)
-{
-    expect_dim(c, p->mean, want, node_get(node, "mean"));
-    expect_dim(c, p->median, want, node_get(node, "median"));
-    expect_dim(c, p->p5, want, node_get(node, "p5"));
-    expect_dim(c, p->p50, want, node_get(node, "p50"));
-    expect_dim(c, p->p95, want, node_get(node, "p95"));
-    expect_dim(c, p->p99, want, node_get(node, "p99"));
-    if (p->error_factor && expr_constant(p->error_factor->expr) <= 1)
-        diag_add(c->diags, node_get(node, "error-factor")->place,
-                 "an error factor is the 95 %% point over the median: greater than 1");
-}
-
-static void check_exposures(struct checking *c, const struct object *o, struct dim want)
-{
-    const struct rate *r = o->data;
-    const struct node *node = node_get(o->node, "exposure");
-    for (size_t i = 0; i < r->exposure.n; i++) {
-        const struct exposure *x = ROW(struct exposure, r->exposure, i);
-        const struct node *row = node->pairs[i].value;
-        struct dim amount = dim_divide(dim_divide(dim_number, want), dim_time);
-        expect_dim(c, x->amount, amount, node_get(row, "amount"));
-        if (x->to != DAY_NONE && x->to < x->from)
-            diag_add(c->diags, node_get(row, "to")->place, "this stretch ends before it begins");
-    }
-}
-
-void check_rate(struct checking *c, const struct object *o)
-{
-    const struct rate *r = o->data;
-    struct dim want;
-    if (!check_dim_of(c, o->id, &want))
-        return;
-    if (want.e[DIM_TIME] != -1)
-        diag_add(c->diags, node_get(o->node, "per")->place,
-                 "a rate is per time too: expected units such as section a, found \"%s\"", r->per);
-    expect_dim(c, r->is, want, node_get(o->node, "is"));
-    if (r->prior)
-        check_prior(c, r->prior, node_get(o->node, "prior"), want);
-    check_exposures(c, o, want);
 }
 
 /* --- elements --- */

@@ -81,7 +81,7 @@ static const struct table table_prior = TABLE(
 static const struct field exposure_fields[] = {
     F(struct exposure, from, "from", DATE, "First day", .flags = REQUIRED),
     F(struct exposure, to, "to", DATE,
-      "Last day; until the day of evaluation where it is left out"),
+      "Last day, itself included; the day of evaluation where it is left out"),
     F(struct exposure, amount, "amount", QUANTITY, "How much is exposed: 8 section, 14 km",
       .dim = ANY, .flags = REQUIRED | CERTAIN | CONSTANT | POSITIVE),
 };
@@ -100,9 +100,10 @@ static const struct field rate_fields[] = {
     F(struct rate, prior, "prior", STRUCT, "Prior knowledge, to be combined with local events",
       .table = &table_prior),
     F(struct rate, events, "events", COUNT, "Local events counted over the exposure", .low = 0,
-      .high = 1000000000000, .flags = LATER),
-    F(struct rate, exposure, "exposure", ROWS, "Dated stretches of local exposure",
-      .part = &exposure_part, .flags = LATER),
+      .high = 1000000000000),
+    F(struct rate, exposure, "exposure", ROWS,
+      "Dated stretches of local exposure, which add up even where they overlap",
+      .part = &exposure_part),
     F(struct rate, growth, "growth", QUANTITY, "Growth per year", .dim = FREQUENCY,
       .flags = CERTAIN | CONSTANT | LATER),
     F(struct rate, since, "since", DATE, "Begin of the ageing", .flags = LATER),

@@ -33,6 +33,8 @@ enum shape {
     SHAPE_TRIANGULAR, /* p[0] from, p[1] most likely, p[2] to */
     SHAPE_PERT,       /* the same, lambda 4 */
     SHAPE_DISCRETE,   /* values[] (rising), probabilities[] */
+    SHAPE_COUNTED,    /* a lognormal prior learnt from events: p[0] median, p[1] error factor,
+                         p[2] events, p[3] exposure. Made from evidence, never written */
     SHAPE_COUNT
 };
 
@@ -41,7 +43,7 @@ struct quantity {
     enum shape shape;
     struct dim dim;          /* known after quantity_check */
     struct expr *expr;       /* SHAPE_EXPRESSION */
-    double p[3];             /* parameters, in base units; see enum shape */
+    double p[4];             /* parameters, in base units; see enum shape */
     size_t n;                /* SHAPE_DISCRETE */
     double *values, *probabilities;
     double times;            /* factor in front, 1 where there is none */

@@ -16,12 +16,13 @@ static const enum dist_shape dist_shapes[SHAPE_COUNT] = {
     [SHAPE_TRIANGULAR] = DIST_TRIANGULAR,
     [SHAPE_PERT] = DIST_PERT,
     [SHAPE_DISCRETE] = DIST_DISCRETE,
+    [SHAPE_COUNTED] = DIST_COUNTED,
 };
 
 static struct dist dist_of(const struct quantity *q)
 {
     assert(q->shape != SHAPE_EXPRESSION);
-    return (struct dist){.shape = dist_shapes[q->shape], .p = {q->p[0], q->p[1], q->p[2]},
+    return (struct dist){.shape = dist_shapes[q->shape], .p = {q->p[0], q->p[1], q->p[2], q->p[3]},
                          .n = q->n, .values = q->values, .probabilities = q->probabilities};
 }
 
@@ -63,6 +64,7 @@ static void range_of_shape(const struct quantity *q, double *low, double *high)
         *high = isnan(q->p[2]) ? INFINITY : q->p[2];
         return;
     case SHAPE_GAMMA:
+    case SHAPE_COUNTED:
         return;
     case SHAPE_BETA:
         *high = 1;

@@ -104,6 +104,24 @@ ohmen_query ohmen_query_defaults(void)
 /* Objects between two calls of whoever watches. */
 enum { STEPS = 1024 };
 
+enum { SECONDS = 86400 }; /* of a day */
+
+/* Days since 1970, rounded down. */
+static day today(void)
+{
+    int64_t now = clock_now();
+    return (day)(now / SECONDS - (now % SECONDS < 0));
+}
+
+static ohmen_status find_date(struct job *j, ohmen_error *e)
+{
+    if (!j->query.date)
+        j->date = today();
+    else if (!date_read(j->query.date, &j->date))
+        return error_set(e, OHMEN_USAGE, "\"%s\" is no date such as 2027-06-30", j->query.date);
+    return OHMEN_OK;
+}
+
 static ohmen_status run_guarded(struct arena *a, ohmen_register *r, enum store_mode mode,
                                 const ohmen_query *query, job_run *run, void *ctx,
                                 ohmen_report **out, ohmen_error *e)
@@ -117,7 +135,9 @@ static ohmen_status run_guarded(struct arena *a, ohmen_register *r, enum store_m
     j->out->arena = a;
     j->report = &j->out->report;
     report_init(j->report, a);
-    ohmen_status status = store_open(a, r->path, mode, &j->store, e);
+    ohmen_status status = find_date(j, e);
+    if (status == OHMEN_OK)
+        status = store_open(a, r->path, mode, &j->store, e);
     if (status == OHMEN_OK)
         status = run(j, ctx, e);
     if (status == OHMEN_OK || j->keep_report)
@@ -176,7 +196,7 @@ static ohmen_status find_entry(struct job *j, const char *as_of, ohmen_error *e)
         return OHMEN_OK;
     }
     if (date_read(as_of, &d))
-        second = (int64_t)d * 86400 + 86399;
+        second = (int64_t)d * SECONDS + SECONDS - 1;
     else if (!utc_read(as_of, &second))
         return error_set(
             e, OHMEN_USAGE,
@@ -246,7 +266,7 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e)
 {
     ohmen_status status = job_load_model(j, e);
     if (status == OHMEN_OK)
-        status = figures_new(j->arena, j->model, j->query.perspective, &j->figures, e);
+        status = figures_new(j->arena, j->model, j->query.perspective, j->date, &j->figures, e);
     if (status == OHMEN_OK)
         status = figures_variant(j->figures, 0, NULL, &j->base, e);
     return status;

@@ -72,7 +72,8 @@ void part_title_block(struct job *j, ohmen_error *e)
     if (store_content_hash(j->store, j->at, hash, e) == OHMEN_OK)
         pair(j, b, "Content", arena_printf(j->arena, "BLAKE2b-256 %.16s...", hash));
     pair(j, b, "Evaluated",
-         arena_printf(j->arena, "%s with ohmen %s", utc_write(now, clock_now()), OHMEN_VERSION));
+         arena_printf(j->arena, "for %s, at %s with ohmen %s", date_write(date, j->date),
+                      utc_write(now, clock_now()), OHMEN_VERSION));
     pair(j, b, "Damage counted", perspective_words(j));
     pair(j, b, "Money",
          arena_printf(j->arena, "%s at prices of %lld, interest %s", s->currency,

@@ -79,7 +79,7 @@ static void run(struct bench *b, int i)
     t[LOAD] = bench_now();
     const struct model *m = model_load(b->a, all.at, all.n, &b->diags);
     t[COMPILE] = bench_now();
-    if (!m || figures_new(b->a, m, "all", &f, &e) != OHMEN_OK)
+    if (!m || figures_new(b->a, m, "all", date_of(2026, 12, 1), &f, &e) != OHMEN_OK)
         fail("the register cannot be loaded");
     compile_all(b, m, f);
     t[EVALUATE] = bench_now();

@@ -213,7 +213,7 @@ static void evaluate(struct arena *a, const struct model *m)
     ohmen_error e = OHMEN_ERROR_INIT;
     struct compiled_list hazards = {0};
     figures_unused(a, m, &unused);
-    ohmen_status status = figures_new(a, m, "all", &f, &e);
+    ohmen_status status = figures_new(a, m, "all", date_of(2026, 12, 1), &f, &e);
     REQUIRE(status == OHMEN_OK);
     status = figures_variant(f, 0, NULL, &v, &e);
     REQUIRE(status == OHMEN_OK);

@@ -26,7 +26,7 @@ void loaded_objects(struct loaded *l, struct arena *a, const struct model_source
     refuse_diags(a, &d);
     ck_assert_ptr_nonnull(l->model);
     ohmen_error e = OHMEN_ERROR_INIT;
-    ohmen_status status = figures_new(a, l->model, perspective, &l->figures, &e);
+    ohmen_status status = figures_new(a, l->model, perspective, LOADED_DATE, &l->figures, &e);
     ck_assert_msg(status == OHMEN_OK, "%s", e.text);
 }
 

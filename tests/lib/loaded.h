@@ -7,6 +7,9 @@
 #include "decide/weigh.h"
 #include "model/documents.h"
 
+/* Their day of evaluation. */
+#define LOADED_DATE date_of(2026, 12, 1)
+
 struct loaded {
     struct arena *arena;
     struct model *model;

@@ -84,7 +84,7 @@ START_TEST(perspectives)
     ck_assert_double_eq(loaded_value(&town, "H.damage.slow"), 0);
     ohmen_error e = OHMEN_ERROR_INIT;
     struct figures *f = NULL;
-    ck_assert_int_eq(figures_new(a, owner.model, "owners", &f, &e), OHMEN_UNKNOWN);
+    ck_assert_int_eq(figures_new(a, owner.model, "owners", LOADED_DATE, &f, &e), OHMEN_UNKNOWN);
     ck_assert_str_eq(e.text, "there is no perspective \"owners\"; did you mean \"owner\"?");
     ck_assert_ptr_null(f);
     arena_free(a);

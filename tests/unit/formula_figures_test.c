@@ -113,7 +113,7 @@ static void expect_all(struct arena *a, const struct model *m, const char *persp
 {
     struct figures *f;
     ohmen_error e = OHMEN_ERROR_INIT;
-    ck_assert_int_eq(figures_new(a, m, perspective, &f, &e), OHMEN_OK);
+    ck_assert_int_eq(figures_new(a, m, perspective, date_of(2026, 12, 1), &f, &e), OHMEN_OK);
     compile_all(f, m);
     for (figure_id id = 0; id < f->list.n; id++) {
         struct arena *scratch = arena_child(a);
@@ -207,7 +207,7 @@ START_TEST(examples_of_the_page)
     struct arena *a = arena_new(NULL);
     struct figures *f;
     size_t count = 0;
-    ck_assert_int_eq(figures_new(a, load_sample(a), NULL, &f, NULL), OHMEN_OK);
+    ck_assert_int_eq(figures_new(a, load_sample(a), NULL, date_of(2026, 12, 1), &f, NULL), OHMEN_OK);
     for (const char *p = source_file(a, "docs/figures.md"); *p;) {
         size_t n = strcspn(p, "\n");
         const char *name = example_in(a, p, n);
