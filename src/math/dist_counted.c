@@ -59,13 +59,15 @@ static void depth_left(const void *ctx, double d, double *value, double *slope)
     *slope = d / (c->s * c->s) + c->k * math_expm1(d);
 }
 
-/* To the right g falls faster than the parabola of its curvature at the top; to the left
- * more slowly, and Newton's steps from there on a convex function never come back. */
+/* Both searches start on the side from which Newton's steps on a curve that bends one
+ * way never overshoot: for the top, to its right. To the right of it g falls faster than
+ * the parabola of its curvature there, to the left more slowly. */
 static struct counted make(const struct dist *d)
 {
     struct likelihood l = {math_log(d->p[1]) / DIST_Z95, d->p[2], d->p[3] * d->p[0]};
     struct dist_function at_top = {slope_of_log_density, &l, -1};
-    double w = dist_root(&at_top, 0, INFINITY);
+    double start = l.events > l.expected ? math_log(l.events / l.expected) : 0;
+    double w = dist_root(&at_top, start, INFINITY);
     struct counted c = {.top = d->p[0] * math_exp(w), .s = l.s, .k = l.expected * math_exp(w)};
     struct dist_function left = {depth_left, &c, -1};
     double width = sqrt(2 * DEPTH / (1 / (c.s * c.s) + c.k));

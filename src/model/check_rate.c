@@ -36,7 +36,7 @@ static void check_learning(struct checking *c, const struct object *o,
                            const struct prior_distribution *d, const struct node *prior)
 {
     const struct rate *r = o->data;
-    if (d->family == PRIOR_GAMMA && d->rate == 0 && r->events < 0)
+    if (d->family == PRIOR_GAMMA && d->rate == 0 && r->events < 0 && r->exposure.n == 0)
         diag_add(c->diags, prior->place,
                  "a Jeffreys prior says nothing by itself: it needs \"events\" and \"exposure\"");
     if (d->family == PRIOR_FIXED && r->events >= 0)

@@ -142,6 +142,14 @@ static const char *gamma_percentiles(struct reading *r)
     return make_gamma(r, shape, rate_of(shape, levels[low].level, r->at[low]));
 }
 
+/* A shape to three digits. */
+static const char *shape_words(struct arena *a, double shape)
+{
+    char buf[32];
+    double tens = math_pow(10, fmax(0, 2 - floor(math_log10(shape))));
+    return arena_str(a, text_double(buf, round(shape * tens) / tens));
+}
+
 static const char *gamma_mean_percentile(struct reading *r)
 {
     double shapes[2] = {0, 0}, mean = number(r->prior->mean);
@@ -152,15 +160,15 @@ static const char *gamma_mean_percentile(struct reading *r)
         return refuse(r, levels[one].key, "no gamma distribution has this mean and percentile");
     if (n == 1 && solution)
         return refuse(r, "solution",
-                      "one gamma distribution has this mean and percentile: leave out \"solution\"");
-    if (n == 2 && !solution) {
-        char lower[32], upper[32];
+                      "one gamma distribution has this mean and percentile: leave out "
+                      "\"solution\"");
+    if (n == 2 && !solution)
         return refuse(r, levels[one].key,
                       arena_printf(r->arena,
                                    "two gamma distributions have this mean and percentile, of the "
                                    "shapes %s and %s: say \"solution: lower\" or \"upper\"",
-                                   text_double(lower, shapes[0]), text_double(upper, shapes[1])));
-    }
+                                   shape_words(r->arena, shapes[0]),
+                                   shape_words(r->arena, shapes[1])));
     double shape = n == 2 && text_equal(solution, "upper") ? shapes[1] : shapes[0];
     return make_gamma(r, shape, shape / mean);
 }
@@ -214,21 +222,34 @@ static const char *by_form(struct reading *r, unsigned keys)
     return NULL;
 }
 
+static const char *gamma_by_keys(struct reading *r, unsigned keys)
+{
+    double weight = number(r->prior->weight);
+    switch (keys) {
+    case MEAN | WEIGHT: return make_gamma(r, weight, weight / number(r->prior->mean));
+    case MEAN | ERROR_FACTOR: return gamma_error_factor(r);
+    case MEDIAN | ERROR_FACTOR: return r->form ? gamma_error_factor(r) : lognormal_error_factor(r);
+    case MEAN | ONE: return gamma_mean_percentile(r);
+    case TWO: return gamma_percentiles(r);
+    default: return wrong_keys(r);
+    }
+}
+
+static const char *lognormal_by_keys(struct reading *r, unsigned keys)
+{
+    switch (keys) {
+    case MEAN | ERROR_FACTOR:
+    case MEDIAN | ERROR_FACTOR: return lognormal_error_factor(r);
+    case TWO: return lognormal_percentiles(r);
+    default: return wrong_keys(r);
+    }
+}
+
 static const char *by_keys(struct reading *r, unsigned keys)
 {
-    bool is_lognormal = is_form(r, "lognormal");
-    if (r->form && !is_lognormal && !is_form(r, "gamma"))
-        return by_form(r, keys);
-    switch (keys) {
-    case MEAN | ERROR_FACTOR: return is_lognormal ? lognormal_error_factor(r) : gamma_error_factor(r);
-    case MEDIAN | ERROR_FACTOR: return r->form && !is_lognormal ? gamma_error_factor(r)
-                                                              : lognormal_error_factor(r);
-    case TWO: return is_lognormal ? lognormal_percentiles(r) : gamma_percentiles(r);
-    default: break;
-    }
-    if (!is_lognormal && keys == (MEAN | WEIGHT))
-        return make_gamma(r, number(r->prior->weight), number(r->prior->weight) / number(r->prior->mean));
-    return !is_lognormal && keys == (MEAN | ONE) ? gamma_mean_percentile(r) : wrong_keys(r);
+    if (!r->form || is_form(r, "gamma"))
+        return gamma_by_keys(r, keys);
+    return is_form(r, "lognormal") ? lognormal_by_keys(r, keys) : by_form(r, keys);
 }
 
 static const char *check_order(struct reading *r)

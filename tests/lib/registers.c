@@ -391,11 +391,21 @@ static struct node *usable_prior(struct generator *g, const char *per)
         put_text(g, m, "weight", random_number(g, 0.3, 6));
     if (form == 1 || form == 2)
         put_text(g, m, "error-factor", random_number(g, 1.3, 12));
+    if (form == 2 && random_chance(g, 2))
+        put_text(g, m, "form", "lognormal");
     if (form == 3)
         put_text(g, m, "form", random_chance(g, 2) ? "constrained" : "fixed");
     if (random_chance(g, 3) && g->ids[KIND_SOURCE].n)
         put_text(g, m, "source", random_id(g, KIND_SOURCE));
     return m;
+}
+
+/* A prior that events may be added to: not a fixed one. */
+static bool learns(const struct node *rate)
+{
+    const struct node *prior = node_get(rate, "prior");
+    const struct node *form = prior ? node_get(prior, "form") : NULL;
+    return prior && !(form && text_equal(form->text, "fixed"));
 }
 
 static void add_rates(struct generator *g)
@@ -417,7 +427,7 @@ static void add_rates(struct generator *g)
         else
             put_node(g, m, "is",
                      two_parts(g, "median", is, "error-factor", random_number(g, 1.3, 9)));
-        if (g->shape.stored && random_chance(g, 3)) {
+        if (learns(m) && random_chance(g, 2)) {
             struct node *stretch = two_parts(g, "from", "2012-01-01", "amount", amounts[k]);
             if (random_chance(g, 2))
                 put_text(g, stretch, "to", "2019-12-31");

@@ -347,20 +347,18 @@ static void add_trees(struct generator *g)
 
 /* --- objects that nothing leads to --- */
 
-/* Priors that this version does not evaluate. */
-static void add_stored_rate(struct generator *g)
+/* Priors by percentiles. */
+static void add_percentile_rate(struct generator *g)
 {
-    static const char *const skip[] = {"per", "exposure", NULL};
+    static const char *const skip[] = {"per", "events", "exposure", NULL};
     struct node *prior = make_map(g), *m = make_map(g);
-    bool mean = random_chance(g, 2);
-    put_text(g, prior, mean ? "mean" : "p5", "1.3e-3 per km a");
-    put_text(g, prior, mean && random_chance(g, 2) ? "p99" : "p95", "8e-3 per km a");
-    if (random_chance(g, 2))
-        put_text(g, prior, "p50", "2e-3 per km a");
+    bool mean = random_chance(g, 2), high = random_chance(g, 2);
+    put_text(g, prior, mean ? "mean" : random_chance(g, 2) ? "p5" : "p50", "1.3e-3 per km a");
+    put_text(g, prior, high ? "p99" : "p95", high ? "8e-3 per km a" : "4e-3 per km a");
     if (mean)
         put_text(g, prior, "solution", prior_solutions[random_draw(g, 0, 1)]);
-    if (random_chance(g, 2))
-        put_text(g, prior, "form", prior_forms[random_draw(g, 0, 4)]);
+    else if (random_chance(g, 2))
+        put_text(g, prior, "form", random_chance(g, 2) ? "gamma" : "lognormal");
     if (g->ids[KIND_SOURCE].n)
         put_text(g, prior, "source", random_id(g, KIND_SOURCE));
     put_text(g, m, "per", "km a");
@@ -390,7 +388,7 @@ void registers_add_stored(struct generator *g)
     add_states(g);
     add_plans(g);
     add_trees(g);
-    add_stored_rate(g);
+    add_percentile_rate(g);
     add_common_causes(g);
     if (g->ids[KIND_SCHEME].n)
         add_unwanted(g);

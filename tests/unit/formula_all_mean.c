@@ -160,13 +160,45 @@ static long double simple(struct reading *r)
         return needed(r, "a") / (needed(r, "a") + needed(r, "b"));
     if (has(r, 0, "median "))
         return with_error_factor(r);
-    static const char *const stated[] = {"gamma with mean", "lognormal with mean",
-                                         "constrained non-informative with mean", "mean"};
+    static const char *const stated[] = {"gamma prior with mean", "lognormal prior with mean",
+                                         "constrained non-informative prior with mean", "mean"};
     for (size_t i = 0; i < sizeof stated / sizeof *stated; i++)
         if (has(r, 0, stated[i]))
             return needed(r, stated[i]);
     r->wrong = true;
     return NAN;
+}
+
+/* "14 bay for 9466 d and 2 bay for 90 d" */
+static long double exposure(struct reading *r, char *at)
+{
+    long double sum = 0;
+    while (at) {
+        char *next = strstr(at, " and "), *days = strstr(at, " for ");
+        if (next)
+            *next = 0;
+        if (!days || (next && days > next)) {
+            r->wrong = true;
+            return NAN;
+        }
+        *days = 0;
+        sum += number(r, at) * strtold(days + 5, NULL) / 365;
+        at = next ? next + 5 : NULL;
+    }
+    return sum;
+}
+
+/* "gamma prior with mean M, weight W; 1 event in ...": (W + n) / (W / M + T). */
+static long double learnt(struct reading *r, char *events)
+{
+    char *in = strstr(events, " in ");
+    if (!has(r, 0, "gamma prior with mean") || !in) {
+        r->wrong = true;
+        return NAN;
+    }
+    long double mean = needed(r, "gamma prior with mean"), weight = needed(r, "weight");
+    long double n = strtold(events, NULL);
+    return (weight + n) / (weight / mean + exposure(r, in + 4));
 }
 
 static void cut(struct reading *r)
@@ -211,8 +243,13 @@ bool mean_of_text(const char *text, const struct formula_world *literals, long d
     if (times)
         return scaled(text, times, literals, out);
     memcpy(r.text, text, strlen(text) + 1);
+    char *events = strstr(r.text, "; ");
+    if (events)
+        *events = 0;
     cut(&r);
-    long double x = strstr(r.part[0], " within ") ? within(&r) : simple(&r);
+    long double x = events                            ? learnt(&r, events + 2)
+                    : strstr(r.part[0], " within ") ? within(&r)
+                                                      : simple(&r);
     if (r.wrong || isnan(x))
         return false;
     *out = x;

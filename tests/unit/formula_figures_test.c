@@ -207,7 +207,8 @@ START_TEST(examples_of_the_page)
     struct arena *a = arena_new(NULL);
     struct figures *f;
     size_t count = 0;
-    ck_assert_int_eq(figures_new(a, load_sample(a), NULL, date_of(2026, 12, 1), &f, NULL), OHMEN_OK);
+    ck_assert_int_eq(figures_new(a, load_sample(a), NULL, date_of(2026, 12, 1), &f, NULL),
+                     OHMEN_OK);
     for (const char *p = source_file(a, "docs/figures.md"); *p;) {
         size_t n = strcspn(p, "\n");
         const char *name = example_in(a, p, n);

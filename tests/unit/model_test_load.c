@@ -181,7 +181,7 @@ START_TEST(dimensions)
           "expected 1 / (section time), found 1 / time");
     wrong("rates: {r: {per: section, is: 0.1 per section}}", 1, 18, "a rate is per time too");
     wrong("rates: {r: {per: section a, prior: {mean: 0.1 per a, weight: 1}}}", 1, 43, "expected");
-    wrong("rates: {r: {per: section a, is: 0.1 per section a,\n"
+    wrong("rates: {r: {per: section a, prior: {form: jeffreys}, events: 1,\n"
           " exposure: {p: {from: 2020-01-01, amount: 3 bay}}}}",
           2, 43, "expected");
     wrong(R HAZARD "    response: {x: {outcome: none}}\n"
@@ -211,7 +211,7 @@ START_TEST(rates)
 {
     wrong("rates: {r: {per: a, prior: {median: 0.1 per a, error-factor: 1}}}", 1, 62,
           "greater than 1");
-    wrong("rates: {r: {per: a, is: 1 per a,\n"
+    wrong("rates: {r: {per: a, prior: {form: jeffreys}, events: 1,\n"
           " exposure: {p: {from: 2020-01-02, to: 2020-01-01, amount: 3}}}}",
           2, 39, "this stretch ends before it begins");
 }
