@@ -168,8 +168,6 @@ ohmen_status posterior_rate(struct arena *a, const struct rate *r, const char *i
         add_events(&t, r, date);
     *q = (struct quantity){.times = 1, .dim = rate_dim(r), .text = text_str(&t)};
     set_learnt(q, &d, r->events > 0 ? (double)r->events : 0, exposure);
-    if (!isfinite(quantity_mean(q)))
-        return error_set(e, OHMEN_COMPUTE, "the rate \"%s\" has no finite mean: %s", id, q->text);
     *out = q;
     return OHMEN_OK;
 }

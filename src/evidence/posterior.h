@@ -26,8 +26,8 @@ ohmen_status posterior_exposure(const struct rate *r, const char *id, day date, 
 
 /* The quantity of a rate: `is` itself, the prior where no events were counted, else the
  * posterior. Its text reads "gamma prior with mean 2.5e-3 per section a, weight 0.5; 3
- * events in 8 section for 4483 d". Errors as above, and OHMEN_COMPUTE for a posterior
- * without a finite mean. The rate is one that model_load accepted. */
+ * events in 8 section for 4483 d". Errors as above. The rate is one that
+ * model_load accepted. */
 ohmen_status posterior_rate(struct arena *a, const struct rate *r, const char *id, day date,
                             const struct quantity **out, ohmen_error *e);
 

@@ -6,7 +6,7 @@
  *     g(m + d) - g(m) = -d^2 / (2 s^2) - k (exp(d) - 1 - d),
  * since g'(m) = 0. This is integrated by Gauss and Legendre's rule of eight points (DLMF
  * 3.5.v) on equal cells between the points where it has fallen to exp(-60) or below.
- * Owns nothing; each call computes its own table. Invariant: all terms of a sum are
+ * Owns nothing; each call computes its own sums. Invariant: all terms of a probability are
  * positive, so that small tails keep their digits. */
 #include <math.h>
 #include <stdbool.h>
@@ -76,24 +76,14 @@ static struct counted make(const struct dist *d)
     return c;
 }
 
-typedef double weighted(const struct counted *c, double d, double about);
-
-/* Integral of density times f between two points. */
-static double integral(const struct counted *c, double from, double to, weighted *f, double about)
+/* Integral of the density between two points. */
+static double mass(const struct counted *c, double from, double to)
 {
     double half = (to - from) / 2, middle = from + half, sum = 0;
-    for (int i = 0; i < POINTS; i++) {
-        double low = middle - half * points[i], high = middle + half * points[i];
-        sum += weights[i] * (density(c, low) * f(c, low, about) +
-                             density(c, high) * f(c, high, about));
-    }
+    for (int i = 0; i < POINTS; i++)
+        sum += weights[i] * (density(c, middle - half * points[i]) +
+                             density(c, middle + half * points[i]));
     return half * sum;
-}
-
-static double one(const struct counted *c, double d, double about)
-{
-    (void)c, (void)d, (void)about;
-    return 1;
 }
 
 static double cell_from(const struct counted *c, int i)
@@ -101,38 +91,56 @@ static double cell_from(const struct counted *c, int i)
     return c->from + i * c->cell;
 }
 
-static double whole(const struct counted *c, weighted *f, double about)
+/* Sums over all points of density times the powers of e - about, e = exp(d) - 1. */
+struct powers {
+    double zeroth, first, second;
+};
+
+static void add_point(const struct counted *c, double d, double weight, double about,
+                      struct powers *sum)
 {
-    double sum = 0;
-    for (int i = 0; i < CELLS; i++)
-        sum += integral(c, cell_from(c, i), cell_from(c, i + 1), f, about);
+    double p = weight * density(c, d), e = math_expm1(d) - about;
+    sum->zeroth += p;
+    sum->first += p * e;
+    sum->second += p * e * e;
+}
+
+static struct powers powers_about(const struct counted *c, double about)
+{
+    struct powers sum = {0, 0, 0};
+    double half = c->cell / 2;
+    for (int cell = 0; cell < CELLS; cell++) {
+        double middle = cell_from(c, cell) + half;
+        for (int i = 0; i < POINTS; i++) {
+            add_point(c, middle - half * points[i], weights[i], about, &sum);
+            add_point(c, middle + half * points[i], weights[i], about, &sum);
+        }
+    }
     return sum;
-}
-
-static double over_top(const struct counted *c, double d, double about)
-{
-    (void)c, (void)about;
-    return math_exp(d);
-}
-
-static double squared(const struct counted *c, double d, double about)
-{
-    double x = math_exp(d) - about;
-    (void)c;
-    return x * x;
 }
 
 double dist_counted_mean(const struct dist *d)
 {
     struct counted c = make(d);
-    return c.top * (whole(&c, over_top, 0) / whole(&c, one, 0));
+    struct powers sum = powers_about(&c, 0);
+    return c.top * (1 + sum.first / sum.zeroth);
 }
 
 double dist_counted_variance(const struct dist *d)
 {
     struct counted c = make(d);
-    double total = whole(&c, one, 0), mean = whole(&c, over_top, 0) / total;
-    return c.top * c.top * (whole(&c, squared, mean) / total);
+    struct powers sum = powers_about(&c, 0);
+    sum = powers_about(&c, sum.first / sum.zeroth);
+    return c.top * c.top * (sum.second / sum.zeroth);
+}
+
+/* The density of all cells together. */
+static double whole(const struct counted *c)
+{
+    double sum = 0;
+    for (int i = 0; i < CELLS; i++)
+        sum += mass(c, cell_from(c, i), cell_from(c, i + 1));
+    return sum;
 }
 
 /* The cell of a point; outside all of them, the nearest. */
@@ -155,10 +163,9 @@ double dist_counted_cdf(const struct dist *d, double x)
     int cell = cell_of(&c, at);
     for (int i = 0; i < CELLS; i++)
         if (i != cell)
-            *(i < cell ? &below : &above) +=
-                integral(&c, cell_from(&c, i), cell_from(&c, i + 1), one, 0);
-    below += integral(&c, cell_from(&c, cell), at, one, 0);
-    above += integral(&c, at, cell_from(&c, cell + 1), one, 0);
+            *(i < cell ? &below : &above) += mass(&c, cell_from(&c, i), cell_from(&c, i + 1));
+    below += mass(&c, cell_from(&c, cell), at);
+    above += mass(&c, at, cell_from(&c, cell + 1));
     return below / (below + above);
 }
 
@@ -172,8 +179,7 @@ struct missing {
 static void excess(const void *ctx, double d, double *value, double *slope)
 {
     const struct missing *m = ctx;
-    double inside = m->direction > 0 ? integral(m->c, m->edge, d, one, 0)
-                                     : integral(m->c, d, m->edge, one, 0);
+    double inside = m->direction > 0 ? mass(m->c, m->edge, d) : mass(m->c, d, m->edge);
     *value = inside - m->amount;
     *slope = m->direction * density(m->c, d);
 }
@@ -182,13 +188,13 @@ double dist_counted_quantile(const struct dist *d, double p, double q)
 {
     struct counted c = make(d);
     bool lower = p <= q;
-    double wanted = (lower ? p : q) * whole(&c, one, 0), sum = 0;
+    double wanted = (lower ? p : q) * whole(&c), sum = 0;
     int cell = lower ? 0 : CELLS - 1, step = lower ? 1 : -1;
     for (;; cell += step) {
-        double mass = integral(&c, cell_from(&c, cell), cell_from(&c, cell + 1), one, 0);
-        if (sum + mass >= wanted || cell + step < 0 || cell + step >= CELLS)
+        double here = mass(&c, cell_from(&c, cell), cell_from(&c, cell + 1));
+        if (sum + here >= wanted || cell + step < 0 || cell + step >= CELLS)
             break;
-        sum += mass;
+        sum += here;
     }
     struct missing m = {&c, cell_from(&c, lower ? cell : cell + 1), wanted - sum, step};
     struct dist_function f = {excess, &m, step};

@@ -1,12 +1,14 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Gamma shapes from percentiles, by halving on the logarithm of the shape. Owns nothing.
- * Invariant: every bracket holds a change of sign, so that halving cannot lose its root. */
+/* Gamma shapes from percentiles, by a bracket on the logarithm of the shape. Owns nothing.
+ * Invariant: every bracket holds a change of sign, so that its root cannot be lost. */
 #include "math/gamma_fit.h"
 
 #include <math.h>
 
 #include "math/dist.h"
 #include "math/elementary.h"
+
+enum { MOST_STEPS = 200 };
 
 /* What is sought: percentile `high` over percentile `low`, or over the mean. */
 struct sought {
@@ -24,22 +26,49 @@ static double quotient_at(const struct sought *s, double u)
     return low > 0 ? high / low : INFINITY;
 }
 
-/* The root of quotient_at = wanted between two logarithms of shapes, between which the
- * quotient rises (or falls); false where it is not between its values there. */
-static bool halve(const struct sought *s, double from, double to, bool rises, double wanted,
-                  double *shape)
+/* One end of a bracket: a logarithm of a shape, and by how much the quotient exceeds the
+ * wanted one, which may be infinite. It is measured on a scale on which the quotient is
+ * nearly straight: two percentiles of a small shape a lie about exp(1/a) apart. */
+struct side {
+    double u, excess;
+};
+
+static struct side side_at(const struct sought *s, double u, double wanted)
 {
-    double first = quotient_at(s, from), last = quotient_at(s, to);
-    if (!(rises ? first <= wanted && wanted <= last : last <= wanted && wanted <= first))
+    double x = quotient_at(s, u);
+    if (s->over_mean)
+        return (struct side){u, math_log(x / wanted)};
+    return (struct side){u, math_log(math_log(x) / math_log(wanted))};
+}
+
+/* False position, the excess of the end that stays halved (the Illinois method: Dowell &
+ * Jarratt, BIT 11 (1971) 168-174); the middle where that is not inside. */
+static double between(const struct side *a, const struct side *b)
+{
+    double u = (a->u * b->excess - b->u * a->excess) / (b->excess - a->excess);
+    return u > a->u && u < b->u ? u : a->u + (b->u - a->u) / 2;
+}
+
+/* The root of quotient_at = wanted between two logarithms of shapes; false where the
+ * quotients there do not enclose it. */
+static bool find(const struct sought *s, double from, double to, double wanted, double *shape)
+{
+    struct side a = side_at(s, from, wanted), b = side_at(s, to, wanted);
+    int stayed = 0; /* the end that the last step left: 1 is b */
+    if (isnan(a.excess) || isnan(b.excess) || (a.excess > 0) == (b.excess > 0))
         return false;
-    while (to - from > 1e-15 && from + (to - from) / 2 > from && from + (to - from) / 2 < to) {
-        double middle = from + (to - from) / 2;
-        if ((quotient_at(s, middle) < wanted) == rises)
-            from = middle;
-        else
-            to = middle;
+    for (int step = 0; step < MOST_STEPS && b.u - a.u > 1e-15; step++) {
+        struct side x = side_at(s, between(&a, &b), wanted);
+        bool is_b = (x.excess > 0) == (b.excess > 0);
+        struct side *moves = is_b ? &b : &a, *stays = is_b ? &a : &b;
+        if (x.u == a.u || x.u == b.u)
+            break;
+        *moves = x;
+        if (stayed == (is_b ? -1 : 1))
+            stays->excess /= 2;
+        stayed = is_b ? -1 : 1;
     }
-    *shape = math_exp(from + (to - from) / 2);
+    *shape = math_exp(a.u + (b.u - a.u) / 2);
     return true;
 }
 
@@ -47,8 +76,7 @@ bool gamma_fit_quotient(struct gamma_level low, struct gamma_level high, double 
                         double *shape)
 {
     struct sought s = {low, high, false};
-    return halve(&s, math_log(GAMMA_FIT_LEAST), math_log(GAMMA_FIT_GREATEST), false, quotient,
-                 shape);
+    return find(&s, math_log(GAMMA_FIT_LEAST), math_log(GAMMA_FIT_GREATEST), quotient, shape);
 }
 
 /* Where a percentile over the mean is greatest, by golden section. */
@@ -81,9 +109,9 @@ int gamma_fit_mean(struct gamma_level level, double ratio, double shapes[2])
     double least = math_log(GAMMA_FIT_LEAST), greatest = math_log(GAMMA_FIT_GREATEST);
     int n = 0;
     if (level.p <= level.q)
-        return halve(&s, least, greatest, true, ratio, &shapes[0]) ? 1 : 0;
+        return find(&s, least, greatest, ratio, &shapes[0]) ? 1 : 0;
     double middle = top(&s, least, greatest);
-    n += halve(&s, least, middle, true, ratio, &shapes[n]);
-    n += halve(&s, middle, greatest, false, ratio, &shapes[n]);
+    n += find(&s, least, middle, ratio, &shapes[n]);
+    n += find(&s, middle, greatest, ratio, &shapes[n]);
     return n;
 }

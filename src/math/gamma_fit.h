@@ -3,9 +3,9 @@
  *
  * Only shapes between GAMMA_FIT_LEAST and GAMMA_FIT_GREATEST are looked for. Plain numbers,
  * nothing allocates. Percentiles are those of dist_gamma_quantile; a shape is found by
- * halving until its logarithm is known to 1e-15 or to neighbouring doubles, so that it
- * carries the error of the percentiles alone: they are met again within 1e-9, held by tests
- * against libRmath. */
+ * closing a bracket until its logarithm is known to 1e-15 or to neighbouring doubles, so
+ * that it carries the error of the percentiles alone: they are met again within 1e-9, held
+ * by tests against libRmath. */
 #ifndef MATH_GAMMA_FIT_H
 #define MATH_GAMMA_FIT_H
 
