@@ -286,11 +286,14 @@ static const char *read_prior(struct reading *r)
 }
 
 /* Parameters that are sound each may still overflow together. */
-static bool is_sound(const struct prior_distribution *d)
+static bool is_sound(const struct reading *r, const struct prior_distribution *d)
 {
+    bool may_be_improper = is_form(r, "jeffreys");
     switch (d->family) {
     case PRIOR_FIXED: return true;
-    case PRIOR_GAMMA: return isfinite(d->shape) && d->shape > 0 && isfinite(d->rate);
+    case PRIOR_GAMMA:
+        return isfinite(d->shape) && d->shape > 0 && isfinite(d->rate) &&
+               (d->rate > 0 || may_be_improper);
     case PRIOR_LOGNORMAL: return isfinite(d->error_factor) && d->median > 0 && isfinite(d->median);
     }
     return false;
@@ -303,7 +306,7 @@ const char *prior_resolve(struct arena *a, const struct prior *p, struct prior_d
     struct reading r = {.arena = a, .prior = p, .out = &made};
     r.form = p->form < 0 ? NULL : prior_forms[p->form];
     const char *why = read_prior(&r);
-    if (!why && !is_sound(&made))
+    if (!why && !is_sound(&r, &made))
         why = refuse(&r, NULL, "this prior has no finite parameters");
     if (why)
         *key = r.key;
