@@ -152,7 +152,7 @@ CREATE TABLE "exposure"( -- A dated stretch
     "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
     "key" TEXT NOT NULL, -- Name of the row
     "from" TEXT, -- First day
-    "to" TEXT, -- Last day; until the day of evaluation where it is left out
+    "to" TEXT, -- Last day, itself included; the day of evaluation where it is left out
     "amount" TEXT, -- How much is exposed: 8 section, 14 km
     PRIMARY KEY("rate", "path")
 ) STRICT, WITHOUT ROWID;

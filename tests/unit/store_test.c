@@ -113,7 +113,7 @@ const char *test_source;
 /* Writes schema/derived.sql as the program makes the tables now. */
 static int accept_derived(void)
 {
-    struct arena *a = test_arena();
+    struct arena *a = arena_new(NULL);
     ohmen_error e = OHMEN_ERROR_INIT;
     const char *text = projection_text(a);
     const char *name = arena_printf(a, "%s/schema/derived.sql", test_source);
