@@ -202,6 +202,11 @@ const char *nearest_take(const struct nearest *n)
     return n->best;
 }
 
+const char *nearest_hint(struct arena *a, const struct nearest *n)
+{
+    return n->best ? arena_printf(a, " (did you mean \"%s\"?)", n->best) : "";
+}
+
 /* snprintf and strtod follow the locale's decimal point; these two undo it.
  * nl_langinfo, because localeconv writes to one static struct from all threads. */
 static void point_to_dot(char *s)

@@ -62,6 +62,8 @@ void nearest_init(struct nearest *n, const char *wanted);
 void nearest_offer(struct nearest *n, const char *candidate);
 /* The best candidate, or NULL when none is near. */
 const char *nearest_take(const struct nearest *n);
+/* " (did you mean "x"?)" for the end of a message, or "". */
+const char *nearest_hint(struct arena *a, const struct nearest *n);
 
 /* x with the fewest digits (at most 17) at which its correctly rounded decimal
  * reads back as exactly x: 2.385, 1.2e-7, 340, 1e15, -0. buf holds at least 32

@@ -197,9 +197,8 @@ static ohmen_status unknown_decision(struct figures *f, const char *id, ohmen_er
     const struct objects *all = &f->base->of[KIND_DECISION];
     for (size_t i = 0; i < all->n; i++)
         nearest_offer(&near, all->at[i]->id);
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "there is no decision \"%s\"%s%s%s", id,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "there is no decision \"%s\"%s", id,
+                     nearest_hint(f->arena, &near));
 }
 
 ohmen_status weigh_compile(struct figures *f, const char *decision, struct weighing **out,

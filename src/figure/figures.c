@@ -26,9 +26,8 @@ static ohmen_status find_perspective(struct figures *f, const char *name, ohmen_
         }
         nearest_offer(&near, rows->keys[i]);
     }
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "there is no perspective \"%s\"%s%s%s", name,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "there is no perspective \"%s\"%s", name,
+                     nearest_hint(f->arena, &near));
 }
 
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,

@@ -33,9 +33,8 @@ static ohmen_status unknown_object(struct figures *f, const char *id, ohmen_erro
     nearest_init(&near, id);
     for (size_t i = 0; i < f->base->by_id.n; i++)
         nearest_offer(&near, f->base->by_id.at[i].key);
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "there is no \"%s\" in the register%s%s%s", id,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "there is no \"%s\" in the register%s", id,
+                     nearest_hint(f->arena, &near));
 }
 
 static const char *without_variant(struct arena *a, const char *name)
@@ -61,9 +60,8 @@ ohmen_status compiled_find(struct figures *f, const struct compiled *u, const ch
     if (!*rest && u->main != FIGURE_NONE)
         return error_set(e, OHMEN_UNKNOWN, "\"%s\" is an object; its main figure is %s", u->id,
                          figure_name(f, f->arena, u->main));
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no figure \"%s\"%s%s%s", u->id, rest,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no figure \"%s\"%s", u->id, rest,
+                     nearest_hint(f->arena, &near));
 }
 
 ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)

@@ -127,9 +127,8 @@ static ohmen_status unknown_option(struct figures *f, const char *id, ohmen_erro
     nearest_init(&near, id);
     for (size_t i = 0; i < f->base->of[KIND_OPTION].n; i++)
         nearest_offer(&near, f->base->of[KIND_OPTION].at[i]->id);
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "there is no option \"%s\"%s%s%s", id,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "there is no option \"%s\"%s", id,
+                     nearest_hint(f->arena, &near));
 }
 
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,

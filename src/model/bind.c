@@ -8,12 +8,6 @@
 
 #include <string.h>
 
-const char *bind_suggest(struct arena *a, const struct nearest *n)
-{
-    const char *best = nearest_take(n);
-    return best ? arena_printf(a, " (did you mean \"%s\"?)", best) : "";
-}
-
 const char *bind_node_words(const struct node *node)
 {
     static const char *const words[] = {"a single value", "a map", "a list"};
@@ -112,7 +106,7 @@ static void unknown_key(struct binding *b, const struct table *t, const struct p
     for (size_t i = 0; i < t->n_fields; i++)
         nearest_offer(&near, t->fields[i].key);
     diag_add(b->diags, p->place, "%s has no key \"%s\"%s", with_article(b, t->name), p->key,
-             bind_suggest(b->arena, &near));
+             nearest_hint(b->arena, &near));
 }
 
 /* The values that stand for "absent" where zero does not. */

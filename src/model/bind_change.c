@@ -24,7 +24,7 @@ static void unknown_section(struct binding *b, const struct pair *p)
     bool known = kind_of_section(p->key) != KIND_COUNT;
     diag_add(b->diags, p->place,
              known ? "a change cannot touch \"%s\"%s" : "\"%s\" is no section%s", p->key,
-             known ? "" : bind_suggest(b->arena, &near));
+             known ? "" : nearest_hint(b->arena, &near));
 }
 
 static struct node *bind_changed_object(struct binding *b, enum kind kind, const struct pair *p)

@@ -50,7 +50,7 @@ static void unknown_key(struct binding *b, const struct pair *p)
     nearest_init(&near, p->key);
     quantity_keys(offer_key, &near);
     diag_add(b->diags, p->place, "a distribution has no key \"%s\"%s", p->key,
-             bind_suggest(b->arena, &near));
+             nearest_hint(b->arena, &near));
 }
 
 /* --- ranges --- */

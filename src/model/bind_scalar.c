@@ -62,7 +62,7 @@ static struct node *bind_word(struct binding *b, const struct field *f, const st
         text_printf(&words, "%s%s", i ? ", " : "", f->words[i]);
     }
     diag_add(b->diags, node->place, "\"%s\" is none of %s%s", node->text, text_str(&words),
-             bind_suggest(b->arena, &near));
+             nearest_hint(b->arena, &near));
     return NULL;
 }
 

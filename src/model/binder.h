@@ -27,9 +27,6 @@ bool bind_is_removal(const struct binding *b, const struct node *node);
 /* Is this key one of those that make a distribution (shape, median, times, ...)? */
 bool bind_is_quantity_key(const char *key);
 
-/* " (did you mean "x"?)", or "". */
-const char *bind_suggest(struct arena *a, const struct nearest *n);
-
 /* What a node is, in words: "a text", "a map", "a list". */
 const char *bind_node_words(const struct node *node);
 

@@ -39,8 +39,7 @@ static void unknown_reference(struct checking *c, const struct object *o, const 
     struct nearest near;
     nearest_init(&near, r->id);
     offer_objects(&(struct offering){c->model, &near, r->kinds});
-    const char *best = nearest_take(&near);
-    const char *hint = best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "";
+    const char *hint = nearest_hint(c->arena, &near);
     diag_add(c->diags, place_of(c, o, r), "there is no \"%s\"; expected %s%s", r->id,
              kinds_words(c->arena, r->kinds), hint);
 }

@@ -22,9 +22,7 @@ static void expect_row(struct checking *c, const struct rows *rows, const char *
     nearest_init(&near, key);
     for (size_t i = 0; i < rows->n; i++)
         nearest_offer(&near, rows->keys[i]);
-    const char *best = nearest_take(&near);
-    diag_add(c->diags, at, "there is no %s \"%s\"%s", what, key,
-             best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "");
+    diag_add(c->diags, at, "there is no %s \"%s\"%s", what, key, nearest_hint(c->arena, &near));
 }
 
 /* --- states --- */

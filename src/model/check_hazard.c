@@ -91,9 +91,8 @@ static void check_outcome_name(struct hazard_check *h, const char *name, const s
         }
         nearest_offer(&near, h->hazard->outcomes.keys[i]);
     }
-    const char *best = nearest_take(&near);
     diag_add(h->c->diags, node->place, "this hazard has no outcome \"%s\"%s", name,
-             best ? arena_printf(h->c->arena, " (did you mean \"%s\"?)", best) : "");
+             nearest_hint(h->c->arena, &near));
 }
 
 static void check_branch(struct hazard_check *h, const struct branch *b, const struct node *node);
@@ -250,9 +249,8 @@ static void unknown_category(struct checking *c, const char *category, struct pl
         for (size_t i = 0; i < names->n; i++)
             nearest_offer(&near, names->at[i]);
     }
-    const char *best = nearest_take(&near);
     diag_add(c->diags, at, "no perspective of the register bears the category \"%s\"%s", category,
-             best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "");
+             nearest_hint(c->arena, &near));
 }
 
 static void check_categories(struct hazard_check *h)

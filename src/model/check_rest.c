@@ -25,9 +25,8 @@ static void check_perspective(struct checking *c, const struct object *o)
     nearest_init(&near, s->perspective);
     for (size_t i = 0; i < s->perspectives.n; i++)
         nearest_offer(&near, s->perspectives.keys[i]);
-    const char *best = nearest_take(&near);
     diag_add(c->diags, node_get(o->node, "perspective")->place, "there is no perspective \"%s\"%s",
-             s->perspective, best ? arena_printf(c->arena, " (did you mean \"%s\"?)", best) : "");
+             s->perspective, nearest_hint(c->arena, &near));
 }
 
 static void check_limits(struct checking *c, const struct quantity *below,

@@ -32,9 +32,8 @@ static void unknown_section(struct merging *m, const struct pair *p)
     nearest_offer(&near, "removed");
     for (int k = 0; k < KIND_COUNT; k++)
         nearest_offer(&near, kinds[k].section);
-    const char *best = nearest_take(&near);
     diag_add(m->diags, p->place, "there is no section \"%s\"%s", p->key,
-             best ? arena_printf(m->arena, " (did you mean \"%s\"?)", best) : "");
+             nearest_hint(m->arena, &near));
 }
 
 static bool new_entry(struct merging *m, enum kind kind, const char *id, struct place at,
@@ -201,10 +200,8 @@ static const struct node *original(struct merging *m, const struct entry *e,
         for (size_t i = 0; i < m->entries.n; i++)
             if (((struct entry *)m->entries.at[i].value)->kind == e->kind)
                 nearest_offer(&near, m->entries.at[i].key);
-        const char *best = nearest_take(&near);
         diag_add(m->diags, like->place, "there is no %s \"%s\" to start from%s",
-                 kinds[e->kind].name, like->text,
-                 best ? arena_printf(m->arena, " (did you mean \"%s\"?)", best) : "");
+                 kinds[e->kind].name, like->text, nearest_hint(m->arena, &near));
         return NULL;
     }
     if (depth == LIKE_DEPTH) {

@@ -113,9 +113,8 @@ static ohmen_status unknown_object(struct job *j, const char *id, ohmen_error *e
         return status;
     for (size_t i = 0; i < j->objects.n; i++)
         nearest_offer(&near, j->objects.at[i].id);
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "the journal knows nothing of \"%s\"%s%s%s", id,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "the journal knows nothing of \"%s\"%s", id,
+                     nearest_hint(j->arena, &near));
 }
 
 static ohmen_status list_versions(struct job *j, const char *id, ohmen_error *e)

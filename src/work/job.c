@@ -294,9 +294,8 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e)
     nearest_init(&near, j->query.site);
     for (size_t i = 0; i < j->model->of[KIND_SITE].n; i++)
         nearest_offer(&near, j->model->of[KIND_SITE].at[i]->id);
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "there is no site \"%s\"%s%s%s", j->query.site,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "there is no site \"%s\"%s", j->query.site,
+                     nearest_hint(j->arena, &near));
 }
 
 ohmen_status job_leave_out(struct job *j, const char *id, ohmen_status status,

@@ -156,7 +156,7 @@ static ohmen_status unknown_kind(struct job *j, const char *section, ohmen_error
     }
     const char *best = nearest_take(&near);
     if (best)
-        return error_set(e, OHMEN_UNKNOWN, "there is no section \"%s\"; did you mean \"%s\"?",
+        return error_set(e, OHMEN_UNKNOWN, "there is no section \"%s\" (did you mean \"%s\"?)",
                          section, best);
     return error_set(e, OHMEN_UNKNOWN, "there is no section \"%s\"; the sections are %s", section,
                      text_str(&all));

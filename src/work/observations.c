@@ -33,12 +33,11 @@ static bool find_column(struct reading *r, size_t column)
         }
         nearest_offer(&near, column_names[k]);
     }
-    const char *best = nearest_take(&near);
     diag_add(r->diags, head->place,
              "a list of observations has no column \"%s\"%s; it has date, kind, object, count, "
              "result, note, "
              "key",
-             head->text, best ? arena_printf(r->arena, " (did you mean \"%s\"?)", best) : "");
+             head->text, nearest_hint(r->arena, &near));
     return false;
 }
 
@@ -81,9 +80,8 @@ static bool check_word(struct reading *r, const struct csv_cell *x, const char *
         nearest_offer(&near, words[i]);
         text_printf(&list, "%s%s", i ? ", " : "", words[i]);
     }
-    const char *best = nearest_take(&near);
     diag_add(r->diags, x->place, "\"%s\" is none of %s%s", x->text, text_str(&list),
-             best ? arena_printf(r->arena, " (did you mean \"%s\"?)", best) : "");
+             nearest_hint(r->arena, &near));
     return false;
 }
 
@@ -113,9 +111,8 @@ static bool check_object_cell(struct reading *r, const struct csv_cell *x)
     nearest_init(&near, x->text);
     for (size_t i = 0; i < r->model->by_id.n; i++)
         nearest_offer(&near, r->model->by_id.at[i].key);
-    const char *best = nearest_take(&near);
     diag_add(r->diags, x->place, "there is no \"%s\" in the register%s", x->text,
-             best ? arena_printf(r->arena, " (did you mean \"%s\"?)", best) : "");
+             nearest_hint(r->arena, &near));
     return false;
 }
 

@@ -412,9 +412,8 @@ static ohmen_status unknown_object(struct job *j, const char *id, ohmen_error *e
     nearest_init(&near, id);
     for (size_t i = 0; i < j->model->by_id.n; i++)
         nearest_offer(&near, j->model->by_id.at[i].key);
-    const char *best = nearest_take(&near);
-    return error_set(e, OHMEN_UNKNOWN, "there is no \"%s\" in the register%s%s%s", id,
-                     best ? "; did you mean \"" : "", best ? best : "", best ? "\"?" : "");
+    return error_set(e, OHMEN_UNKNOWN, "there is no \"%s\" in the register%s", id,
+                     nearest_hint(j->arena, &near));
 }
 
 /* The figures of the object in *c; NULL, with a reason in *why, where this version has none. */

@@ -85,7 +85,7 @@ START_TEST(perspectives)
     ohmen_error e = OHMEN_ERROR_INIT;
     struct figures *f = NULL;
     ck_assert_int_eq(figures_new(a, owner.model, "owners", LOADED_DATE, &f, &e), OHMEN_UNKNOWN);
-    ck_assert_str_eq(e.text, "there is no perspective \"owners\"; did you mean \"owner\"?");
+    ck_assert_str_eq(e.text, "there is no perspective \"owners\" (did you mean \"owner\"?)");
     ck_assert_ptr_null(f);
     arena_free(a);
 }
@@ -116,7 +116,7 @@ START_TEST(names_that_are_not_there)
     struct loaded l;
     edge_register(&l, a, absent_text);
     refused(&l, "H.risk.slo", OHMEN_UNKNOWN,
-            "\"H\" has no figure \"risk.slo\"; did you mean \"risk.slow\"?");
+            "\"H\" has no figure \"risk.slo\" (did you mean \"risk.slow\"?)");
     refused(&l, "G.risk", OHMEN_UNKNOWN, "there is no \"G\" in the register");
     refused(&l, "H.risk@X", OHMEN_UNKNOWN, "there is no option \"X\"");
     refused(&l, "H", OHMEN_UNKNOWN, "\"H\" is an object; its main figure is H.risk");

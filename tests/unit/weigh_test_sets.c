@@ -264,7 +264,7 @@ START_TEST(trees_are_refused)
     loaded_texts(&l, a, 2, texts, NULL);
     refused(&l, "TREE", OHMEN_COMPUTE, words);
     refused(&l, "TREE", OHMEN_COMPUTE, words);
-    refused(&l, "TREES", OHMEN_UNKNOWN, "there is no decision \"TREES\"; did you mean \"TREE\"?");
+    refused(&l, "TREES", OHMEN_UNKNOWN, "there is no decision \"TREES\" (did you mean \"TREE\"?)");
     arena_free(a);
 }
 END_TEST
