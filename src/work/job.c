@@ -360,11 +360,14 @@ static void as_csv(struct text *out, const struct report *r, const ohmen_layout 
 static const char *write_report(ohmen_report *r, report_writer *writer, const ohmen_layout *layout)
 {
     struct text out;
-    if (setjmp(r->guard))
+    if (setjmp(r->guard)) {
+        arena_guard(r->arena, NULL);
         return NULL;
+    }
     arena_guard(r->arena, &r->guard);
     text_init(&out, r->arena);
     writer(&out, &r->report, layout);
+    arena_guard(r->arena, NULL); /* the frame to jump to ends here */
     return text_str(&out);
 }
 
