@@ -25,4 +25,13 @@ double eval_value(const struct eval *v, node_id n);
  * overwritten. At a tie of min or max the first arm takes it all. */
 void eval_backward(struct eval *v, node_id root, double *derivative);
 
+/* What each variable of a DIAGRAM does to the root of the last eval_backward, to which the
+ * diagram belongs: with R the root, linear in the diagram's results around the point,
+ *     gain[i]  = R(variable i true at all times) - R(variable i false at all times)
+ *     share[i] = R - R(variable i false at all times)
+ * Birnbaum importance is gain; Fussell-Vesely importance (R - R0) / R is share / R; risk
+ * achievement worth is 1 + (gain - share) / R; risk reduction worth R / (R - share)
+ * (Vesely et al., NUREG/CR-3385, 1983). gain and share hold as many as the diagram has args. */
+void eval_effects(struct eval *v, node_id diagram, double *gain, double *share);
+
 #endif

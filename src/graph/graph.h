@@ -48,6 +48,9 @@ typedef uint32_t node_id;
     X(SQRT, "sqrt", 1, 1, "sqrt", 0)                                                   \
     X(LOOKUP, "lookup", 3, 255, "lookup", 0) /* x, b1, v1, b2, v2, ...; b CONST     */ \
     X(ANNUITY, "annuity", 3, 3, "annuity", 0) /* rate, from, to: see graph_annuity  */ \
+    X(EITHER, "either", 1, 255, "either", 0) /* 1 - (1 - x)(1 - y)...: independent events */ \
+    X(YEARS, "years", 2, 255, "years", 0) /* rate, values: see graph_years           */ \
+    X(COURSE, "course", 5, 5, "course", 0) /* a probability over time: graph_course   */ \
     X(DIAGRAM, "diagram", 0, 255, "diagram", 0) /* a decision diagram: many results  */\
     X(PICK, "pick", 1, 1, "pick", 0)    /* one result of a DIAGRAM                  */
 
@@ -109,6 +112,47 @@ node_id graph_op2(struct graph *g, enum graph_op op, node_id x, node_id y);
  * text, e.g. the (P/A, i, n) tables). rate 0 gives to - from. All pure numbers. */
 node_id graph_annuity(struct graph *g, node_id rate, node_id from, node_id to);
 
+/* Present value of something that differs from year to year: the sum over the years that
+ * `from` .. `to` touches of d (1 + rate)^-m v, where d and m are the length and the middle of
+ * that part of the year which lies inside (as graph_annuity), and v is the value that holds in
+ * the year: values[of_year[i]] in year floor(from) + i. With rate 0 it is the plain sum of v
+ * times length. Values have one dimension, which is the result's; rate is a number. Linear in
+ * the values. The table is copied. from <= to, both finite and within 2^53; n_years is the
+ * number of years that are touched (0 where from = to). */
+struct years {
+    double from, to;
+    size_t n_years;
+    const uint32_t *of_year;
+};
+node_id graph_years(struct graph *g, node_id rate, size_t n, const node_id *values,
+                    const struct years *y);
+const struct years *graph_years_of(const struct graph *g, node_id n);
+
+/* A probability over time t, by which variables of a diagram may change (graph_diagram_over).
+ * Three independent parts, of which any one makes it true:
+ *     standing                                     the same at all times
+ *     h  that starts at `left` after each reset (at 0 in the first stretch where it is fresh),
+ *        and follows dh/dt = rate (1 - h) - ending h:
+ *            h = start exp(-s x) + rate (1 - exp(-s x)) / s,  s = rate + ending, x = time since
+ *     m  that is never reset: dm/dt = unreset (1 - m) - ending m, m = 0 at `born`
+ * p(t) = 1 - (1 - standing)(1 - h)(1 - m). Resets: at `first`, `first` + `every`, ...; before
+ * `first` time counts from `from`. At the instant of a reset p is what it is right after it.
+ * s = 0 gives h = start. Rausand, Reliability of Safety-Critical Systems (2014), ch. 8: the
+ * undetected failures of an item that is tested at intervals and also found by demands.
+ *
+ * args: standing, rate, ending, left, unreset; standing and left are numbers, the three rates
+ * have one dimension, whose inverse is that of the times in `struct course`.
+ * The value of the node itself is p(0). from <= first where it is finite; every > 0 then. */
+struct course {
+    double from, first, every; /* first: INFINITY for none */
+    double born;
+    bool fresh;
+};
+node_id graph_course(struct graph *g, const struct course *c, const node_id args[5]);
+const struct course *graph_course_of(const struct graph *g, node_id n);
+/* p(t), for t >= from and born; x: values of the args. */
+double course_at(const struct course *c, const double x[5], double t);
+
 /* A decision diagram over Boolean variables with independent probabilities (see
  * diagram.h) as an operation: args[i] is the probability that variable i is true,
  * n is at least the diagram's n_variables. Where args[i] is a COMPLEMENT node, the
@@ -118,6 +162,27 @@ node_id graph_annuity(struct graph *g, node_id rate, node_id from, node_id to);
 struct diagram;
 node_id graph_diagram(struct graph *g, const struct diagram *d, size_t n, const node_id *args);
 node_id graph_pick(struct graph *g, node_id diagram, uint32_t root);
+
+/* The same with probabilities that change with time: args may also be COURSE nodes (not
+ * complements of them). Results are averages over each window (from < to) of the probability of
+ * each root. The integrals are exact to 1e-11 relative (Gauss-Legendre between the resets of all
+ * variables, of an order that the exponents and the least number of variables that make a root
+ * true ask for). Windows lie behind `from` and `born` of every course. Windows are copied;
+ * without them (NULL or n = 0) it is graph_diagram. graph_pick is of window 0. */
+struct window {
+    double from, to;
+};
+struct windows {
+    size_t n;
+    const struct window *at;
+};
+node_id graph_diagram_over(struct graph *g, const struct diagram *d, size_t n, const node_id *args,
+                           const struct windows *w);
+node_id graph_pick_in(struct graph *g, node_id diagram, uint32_t window, uint32_t root);
+/* n = 0: none. */
+struct windows graph_windows_of(const struct graph *g, node_id diagram);
+/* Which window and root a PICK takes. */
+void graph_pick_of(const struct graph *g, node_id pick, uint32_t *window, uint32_t *root);
 
 /* Reading. The pointers stay readable while the graph grows, since nodes never
  * change and an arena keeps what it gave. */
@@ -157,6 +222,15 @@ node_id graph_lower(struct graph *to, const struct graph *from, node_id root);
  * both. Nodes are worked through once for all questions, and what was found is kept
  * in the graph's arena: not to be asked from several threads at once. */
 int graph_degree(const struct graph *g, node_id root);
+
+/* The inputs over which the mean of `root` must be integrated, in rising order: those that enter
+ * it more than once or in a curve. All others may be held at their means, whatever these are, as
+ * the root is linear in each of them for all values of the rest. n = 0 exactly where the degree
+ * is below 2. The list lives with the graph. A COURSE is curved in its rates and linear in
+ * `standing` and `left`; a DIAGRAM is linear in each variable. */
+const uint32_t *graph_curved(const struct graph *g, node_id root, size_t *n);
+/* All uncertain inputs of `root`, in rising order: linear ones and curved ones. */
+const uint32_t *graph_uncertain(const struct graph *g, node_id root, size_t *n);
 
 /* One line a node, for people and tests: number, op, arguments, constant, dim (see
  * dump.c for examples). */
