@@ -41,6 +41,7 @@ CREATE TABLE "register"( -- The register itself: one in each file
     "horizon" TEXT, -- How many years are looked ahead
     "discount" TEXT, -- Interest, such as 4 % per a
     "customers_served" INTEGER, -- Customers that the network serves
+    "steady" INTEGER, -- Are figures long-run averages, instead of those of each year of the horizon?
     "sustained_over" TEXT, -- Interruptions longer than this count as sustained (IEEE 1366)
     "perspective" TEXT, -- The perspective of reports that do not name one; all categories where it is left out
     "criteria_money_scope" TEXT, -- What the limits apply to
@@ -230,6 +231,7 @@ CREATE TABLE "element"( -- One part that protection depends on
     "when_known" TEXT, -- Last known to be sound
     "test_every" TEXT, -- Interval of the routine test
     "test_last" TEXT, -- Day of the last test
+    "test_next" TEXT, -- Day of the next planned test; the first whole number of intervals behind the last test that lies behind the day of evaluation where it is left out
     "test_takes" TEXT, -- Time out of service for a test
     "test_costs" TEXT, -- Cost of a test
     "test_finds" TEXT, -- Share of undetected failures that the test finds
@@ -242,6 +244,15 @@ CREATE TABLE "element"( -- One part that protection depends on
     "source" TEXT, -- Where the number comes from
     "note" TEXT, -- Anything else
     PRIMARY KEY("id")
+) STRICT, WITHOUT ROWID;
+
+CREATE TABLE "element_revealed_by"( -- Hazards that call on it, after each of which a failure is found and mended
+    "element" TEXT NOT NULL, -- Id of the object
+    "path" TEXT NOT NULL, -- Where in the object it stands
+    "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
+    "position" INTEGER NOT NULL, -- Place in the list, from 0
+    "value" TEXT NOT NULL, -- Name in the set
+    PRIMARY KEY("element", "path")
 ) STRICT, WITHOUT ROWID;
 
 CREATE TABLE "element_unwanted_per_event"( -- A number and where it comes from
@@ -262,6 +273,7 @@ CREATE TABLE "common_cause"( -- Elements that fail from one cause
     "beta_detected" TEXT, -- Share of detected failures with a common cause
     "found_by" TEXT, -- The element whose test finds the common failure
     "settings" INTEGER, -- Is the common cause a wrong setting?
+    "staggered" INTEGER, -- Do the alpha factors come from staggered tests?
     "source" TEXT, -- Where the number comes from
     "note" TEXT, -- Anything else
     PRIMARY KEY("id")
@@ -280,7 +292,7 @@ CREATE TABLE "common_cause_factors"( -- Alpha factor
     "common_cause" TEXT NOT NULL, -- Id of the object
     "path" TEXT NOT NULL, -- Where in the object it stands
     "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
-    "key" TEXT NOT NULL, -- Name of the row
+    "position" INTEGER NOT NULL, -- Place in the list, from 0
     "value" TEXT, -- Alpha factor
     PRIMARY KEY("common_cause", "path")
 ) STRICT, WITHOUT ROWID;
@@ -337,6 +349,7 @@ CREATE TABLE "response_row"( -- One row of a hazard's response
     "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
     "key" TEXT NOT NULL, -- Name of the row
     "cleared_by" TEXT, -- The scheme that clears the fault in this row
+    "breaker_failure_of" TEXT, -- The row whose breaker this row backs up: it acts where that row's protection has operated and its breaker has not opened
     "in" TEXT, -- Clearance time
     "sees_is" TEXT, -- The number
     "sees_source" TEXT, -- Where the number comes from

@@ -70,58 +70,76 @@ void check_references(struct checking *c, const struct object *o)
 /* Kinds whose references must not lead back to where they began. */
 static bool is_ordered(enum kind k)
 {
-    return k == KIND_VALUE || k == KIND_SCHEME || k == KIND_HAZARD || k == KIND_SITE;
+    return k == KIND_VALUE || k == KIND_RATE || k == KIND_TYPE || k == KIND_ELEMENT ||
+           k == KIND_SCHEME || k == KIND_HAZARD || k == KIND_SITE;
 }
+
+/* An object, or only the frequency of a hazard: a relay may be revealed by a hazard that it
+ * clears, since how often that hazard comes does not depend on the relay. */
+struct part {
+    const struct object *object;
+    bool frequency;
+    size_t next; /* reference */
+};
 
 struct cycle_walk {
     struct checking *c;
-    struct strmap state; /* id -> open or done */
-    ARRAY(const struct object *) trail;
-    ARRAY(size_t) next; /* next reference of each object on the trail */
+    struct strmap state; /* id, or "id frequency" -> open or done */
+    ARRAY(struct part) trail;
 };
 
 static char open_mark, done_mark;
+
+static const char *part_key(struct cycle_walk *w, const struct object *o, bool frequency)
+{
+    return frequency ? arena_printf(w->c->arena, "%s frequency", o->id) : o->id;
+}
 
 static void report_cycle(struct cycle_walk *w, const struct reference *r)
 {
     struct text t;
     size_t from = 0;
     text_init(&t, w->c->arena);
-    while (!text_equal(w->trail.at[from]->id, r->id))
+    while (!text_equal(w->trail.at[from].object->id, r->id))
         from++;
     for (size_t i = from; i < w->trail.n; i++)
-        text_printf(&t, "%s -> ", w->trail.at[i]->id);
+        text_printf(&t, "%s -> ", w->trail.at[i].object->id);
     text_add(&t, r->id);
     diag_add(w->c->diags, r->place, "\"%s\" is defined by itself: %s", r->id, text_str(&t));
 }
 
-static void enter(struct cycle_walk *w, const struct object *o)
+static void enter(struct cycle_walk *w, const struct object *o, bool frequency)
 {
-    strmap_set(w->c->arena, &w->state, o->id, &open_mark);
-    *array_push(w->c->arena, &w->trail) = o;
-    *array_push(w->c->arena, &w->next) = 0;
+    strmap_set(w->c->arena, &w->state, part_key(w, o, frequency), &open_mark);
+    *array_push(w->c->arena, &w->trail) = (struct part){o, frequency, 0};
+}
+
+static bool is_followed(const struct part *p, const struct reference *r, const struct object *to)
+{
+    if (!to || !is_ordered(to->kind) || r->trace)
+        return to && to->kind == KIND_SITE && p->object->kind == KIND_SITE;
+    return !p->frequency || text_equal(r->path, "frequency");
 }
 
 /* One step of the search that keeps its own stack: structures of any length are safe. */
 static void step(struct cycle_walk *w)
 {
-    const struct object *o = *array_last(&w->trail);
-    size_t *next = array_last(&w->next);
-    if (*next == o->refs.n) {
-        strmap_set(w->c->arena, &w->state, o->id, &done_mark);
+    struct part *p = array_last(&w->trail);
+    if (p->next == p->object->refs.n) {
+        strmap_set(w->c->arena, &w->state, part_key(w, p->object, p->frequency), &done_mark);
         w->trail.n--;
-        w->next.n--;
         return;
     }
-    const struct reference *r = &o->refs.at[(*next)++];
+    const struct reference *r = &p->object->refs.at[p->next++];
     const struct object *to = model_find(w->c->model, r->id);
-    if (!to || !is_ordered(to->kind) || (to->kind == KIND_SITE) != (o->kind == KIND_SITE))
+    if (!is_followed(p, r, to))
         return;
-    const void *state = strmap_get(&w->state, to->id);
+    bool frequency = r->frequency && to->kind == KIND_HAZARD;
+    const void *state = strmap_get(&w->state, part_key(w, to, frequency));
     if (state == &open_mark)
         report_cycle(w, r);
     else if (!state)
-        enter(w, to);
+        enter(w, to, frequency);
 }
 
 void check_cycles(struct checking *c)
@@ -131,7 +149,7 @@ void check_cycles(struct checking *c)
         const struct object *o = c->model->by_id.at[i].value;
         if (!o || !is_ordered(o->kind) || strmap_has(&w.state, o->id))
             continue;
-        enter(&w, o);
+        enter(&w, o, false);
         while (w.trail.n)
             step(&w);
     }
@@ -148,6 +166,7 @@ void check_object(struct checking *c, const struct object *o)
     case KIND_RATE: check_rate(c, o); break;
     case KIND_ELEMENT:
     case KIND_TYPE: check_element(c, o); break;
+    case KIND_COMMON_CAUSE: check_common_cause(c, o); break;
     case KIND_HAZARD: check_hazard(c, o); break;
     case KIND_OPTION: check_option(c, o); break;
     case KIND_STATE: check_state(c, o); break;

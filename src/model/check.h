@@ -25,8 +25,8 @@ void check_object(struct checking *c, const struct object *o);
 /* References exist and are of the right kind. */
 void check_references(struct checking *c, const struct object *o);
 
-/* No value, scheme, hazard or site is defined by itself; all objects of the model at
- * once (of a variant: those that it changed). */
+/* No value, rate, type, element, scheme, hazard or site is defined by itself; all objects of the
+ * model at once (of a variant: those that it changed). */
 void check_cycles(struct checking *c);
 
 /* Quantities agree in dimension with themselves and with their fields. */
@@ -39,6 +39,7 @@ void check_hazard(struct checking *c, const struct object *o);
 void check_settings(struct checking *c, const struct object *o);
 void check_rate(struct checking *c, const struct object *o);
 void check_element(struct checking *c, const struct object *o);
+void check_common_cause(struct checking *c, const struct object *o);
 void check_option(struct checking *c, const struct object *o);
 void check_state(struct checking *c, const struct object *o);
 void check_decision(struct checking *c, const struct object *o);

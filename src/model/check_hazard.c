@@ -149,11 +149,41 @@ static double clearance(const struct response_row *row)
     return row->in ? expr_constant(row->in->expr) : INFINITY;
 }
 
+/* The row whose breaker is backed up: another one that clears, and earlier. */
+static void check_breaker_failure(struct hazard_check *h, const struct response_row *row,
+                                  const struct node *node)
+{
+    const struct rows *rows = &h->hazard->response;
+    const struct node *at = node_get(node, "breaker-failure-of");
+    struct nearest near;
+    if (!row->breaker_failure_of)
+        return;
+    if (!row->cleared_by)
+        diag_add(h->c->diags, at->place,
+                 "\"breaker-failure-of\" belongs to \"cleared-by\", which is missing");
+    nearest_init(&near, row->breaker_failure_of);
+    for (size_t i = 0; i < rows->n; i++) {
+        const struct response_row *first = ROW(struct response_row, *rows, i);
+        nearest_offer(&near, rows->keys[i]);
+        if (!text_equal(rows->keys[i], row->breaker_failure_of))
+            continue;
+        if (first == row || !first->cleared_by || clearance(first) >= clearance(row))
+            diag_add(h->c->diags, at->place,
+                     "the row \"%s\" does not clear before this one: breaker failure protection "
+                     "acts after the protection whose breaker it backs up",
+                     rows->keys[i]);
+        return;
+    }
+    diag_add(h->c->diags, at->place, "this hazard has no row \"%s\"%s", row->breaker_failure_of,
+             nearest_hint(h->c->arena, &near));
+}
+
 static void check_row(struct hazard_check *h, const struct response_row *row,
                       const struct node *node)
 {
     h->row = row;
     check_branch(h, &row->then, node);
+    check_breaker_failure(h, row, node);
     if (row->cleared_by && !row->in)
         diag_add(h->c->diags, node->place,
                  "this row lacks \"in\", the clearance time: rows act in its order");

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Settings, elements and options. Rates are in check_rate.c, states
- * and decisions in check_decide.c. */
+/* Settings, elements and options. Rates are in check_rate.c, common causes in
+ * check_common_cause.c, states and decisions in check_decide.c. */
 #include "model/check.h"
 
 #include <math.h>
@@ -82,13 +82,46 @@ static void check_record(struct checking *c, const struct demand_record *r, cons
                  "there are more failures than demands; the demands include the failures");
 }
 
+/* Days in order: in service, known to be sound, last test, next test. */
+static void check_days(struct checking *c, const struct object *o)
+{
+    const struct element *x = o->data;
+    const struct node *test = node_get(o->node, "test");
+    if (x->since != DAY_NONE && x->known != DAY_NONE && x->known < x->since)
+        diag_add(c->diags, node_get(o->node, "when-known")->place,
+                 "\"when-known\" lies before \"since\"");
+    if (!x->test)
+        return;
+    if (x->test->last != DAY_NONE && x->since != DAY_NONE && x->test->last < x->since)
+        diag_add(c->diags, node_get(test, "last")->place,
+                 "the last test lies before \"since\", when the element came into service");
+    if (x->test->last != DAY_NONE && x->test->next != DAY_NONE && x->test->next <= x->test->last)
+        diag_add(c->diags, node_get(test, "next")->place,
+                 "the next test must lie behind the last one");
+}
+
+static void check_repair(struct checking *c, const struct object *o)
+{
+    const struct element *x = o->data;
+    const struct element_type *t = x->type ? model_get(c->model, KIND_TYPE, x->type) : NULL;
+    bool detected = x->detected || (t && t->detected), repair = x->repair || (t && t->repair);
+    const struct node *at = node_get(o->node, "detected");
+    if (detected && !repair && !x->out_while_repaired)
+        diag_add(c->diags, at ? at->place : node_get(o->node, "type")->place,
+                 "detected failures need \"repair\", the time until they are mended");
+}
+
 void check_element(struct checking *c, const struct object *o)
 {
-    const struct demand_record *r = o->kind == KIND_ELEMENT
-                                        ? ((const struct element *)o->data)->per_demand
-                                        : ((const struct element_type *)o->data)->per_demand;
+    bool is_element = o->kind == KIND_ELEMENT;
+    const struct demand_record *r = is_element ? ((const struct element *)o->data)->per_demand
+                                               : ((const struct element_type *)o->data)->per_demand;
     if (r)
         check_record(c, r, node_get(o->node, "per-demand"));
+    if (!is_element)
+        return;
+    check_days(c, o);
+    check_repair(c, o);
 }
 
 /* --- options --- */

@@ -64,7 +64,8 @@ enum field_flag {
                           of this version: reports name it where it is given */
     CONSTANT = 1 << 6, /* a quantity of literals only */
     VARYING = 1 << 7,  /* a quantity drawn anew at each occurrence */
-    TRACE = 1 << 8     /* a reference that computes nothing: site, source, owner */
+    TRACE = 1 << 8,    /* a reference that computes nothing: site, source, owner */
+    FREQUENCY_ONLY = 1 << 9 /* references to hazards of which only the frequency is asked */
 };
 
 struct table;

@@ -75,6 +75,7 @@ struct register_settings {
     struct quantity *horizon, *discount, *sustained_over;
     struct names counts;
     int64_t customers_served;
+    bool steady; /* figures are long-run averages */
     struct rows perspectives; /* of struct names */
     struct criteria *criteria;
 };
@@ -131,7 +132,7 @@ struct demand_record {
 };
 struct test {
     struct quantity *every, *takes, *costs, *finds, *leaves_failed, *trips;
-    day last;
+    day last, next;
     const char *source;
 };
 struct unwanted {
@@ -144,6 +145,7 @@ struct element {
     struct demand_record *per_demand;
     struct estimate *undetected, *detected, *out_of_service;
     struct quantity *repair, *exercised;
+    struct names revealed_by;
     bool out_while_repaired;
     day since, known;
     struct test *test;
@@ -159,13 +161,17 @@ struct element_type {
     struct unwanted *unwanted;
 };
 
+/* Elements of one common cause: with beta, and with alpha factors. */
+#define COMMON_CAUSE_BETA 5
+#define COMMON_CAUSE_MOST 8
 struct common_cause {
     const char *name, *source, *note;
     struct quantity *beta, *beta_detected;
     struct names of;
     const char *found_by;
     bool settings;
-    struct rows factors; /* of struct quantity * */
+    struct list factors; /* of struct quantity *: of failures of 1, 2, ... elements */
+    bool staggered;
 };
 
 struct scheme {
@@ -181,7 +187,7 @@ struct branch {
     struct branch *yes, *no;
 };
 struct response_row {
-    const char *cleared_by;
+    const char *cleared_by, *breaker_failure_of;
     struct quantity *in; /* clearance time */
     struct estimate *sees;
     struct branch then; /* share is NULL */

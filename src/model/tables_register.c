@@ -67,6 +67,8 @@ static const struct field register_fields[] = {
       "Countable things that serve as units: section, bay"),
     F(struct register_settings, customers_served, "customers-served", COUNT,
       "Customers that the network serves", .low = 0, .high = 1000000000000, .flags = LATER),
+    F(struct register_settings, steady, "steady", YES,
+      "Are figures long-run averages, instead of those of each year of the horizon?"),
     F(struct register_settings, sustained_over, "sustained-over", QUANTITY,
       "Interruptions longer than this count as sustained (IEEE 1366)", .dim = TIME,
       .flags = CERTAIN | NOT_NEGATIVE | CONSTANT | LATER),

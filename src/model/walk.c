@@ -139,6 +139,7 @@ struct collecting {
     const struct visit *visit; /* the one being looked at */
     const char *path;
     unsigned later; /* fields around this one that are not evaluated */
+    bool frequency; /* in frequency(...) */
 };
 
 static void add_reference(struct collecting *c, const char *id, unsigned allowed, struct place at)
@@ -146,13 +147,14 @@ static void add_reference(struct collecting *c, const char *id, unsigned allowed
     if (!c->path)
         c->path = arena_str(c->arena, c->visit->path);
     at.path = at.line ? at.path : c->path;
-    *array_push(c->arena, c->out) =
-        (struct reference){.id = id,
-                           .kinds = allowed,
-                           .trace = (c->visit->field->flags & TRACE) != 0,
-                           .later = c->later > 0,
-                           .place = at,
-                           .path = c->path};
+    *array_push(c->arena, c->out) = (struct reference){
+        .id = id,
+        .kinds = allowed,
+        .trace = (c->visit->field->flags & TRACE) != 0,
+        .later = c->later > 0,
+        .frequency = c->frequency || (c->visit->field->flags & FREQUENCY_ONLY) != 0,
+        .place = at,
+        .path = c->path};
 }
 
 static void references_of_expr(void *ctx, const struct expr *e)
@@ -167,7 +169,11 @@ static void references_of_expr(void *ctx, const struct expr *e)
         break;
     case EXPR_UNWANTED: add_reference(c, e->name, KIND_BIT(KIND_SCHEME), at); break;
     case EXPR_FAILS: add_reference(c, e->name, KIND_BIT(KIND_ELEMENT), at); break;
-    case EXPR_FREQUENCY: add_reference(c, e->name, KIND_BIT(KIND_HAZARD), at); break;
+    case EXPR_FREQUENCY:
+        c->frequency = true;
+        add_reference(c, e->name, KIND_BIT(KIND_HAZARD), at);
+        c->frequency = false;
+        break;
     default: break;
     }
 }

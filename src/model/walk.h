@@ -44,6 +44,7 @@ struct reference {
     unsigned kinds; /* allowed */
     bool trace;     /* computes nothing */
     bool later;     /* stands in a field that this version does not evaluate */
+    bool frequency; /* asks only for the frequency of a hazard */
     struct place place;
     const char *path; /* below the object; lives in the arena */
 };

@@ -440,12 +440,20 @@ static void add_rates(struct generator *g)
     put_node(g, g->root, "rates", section);
 }
 
+/* Detected failures are mended in some time. */
+static void mend_detected(struct generator *g, struct node *m)
+{
+    if (node_get(m, "detected") && !node_get(m, "repair"))
+        put_text(g, m, "repair", "31 h");
+}
+
 static void add_types(struct generator *g)
 {
     struct node *section = make_map(g);
     for (size_t i = 0; i < g->ids[KIND_TYPE].n; i++) {
         struct node *m = make_pair(g, "per-demand", random_record(g));
         fill_fields(g, m, kinds[KIND_TYPE].table, NULL);
+        mend_detected(g, m);
         put_node(g, section, g->ids[KIND_TYPE].at[i], m);
     }
     put_node(g, g->root, "types", section);
@@ -469,6 +477,7 @@ static void add_elements(struct generator *g)
                 *array_push(g->arena, &g->own) = all.at[i];
         }
         fill_fields(g, m, kinds[KIND_ELEMENT].table, skip);
+        mend_detected(g, m);
         put_node(g, section, all.at[i], m);
         *array_push(g->arena, &g->ids[KIND_ELEMENT]) = all.at[i];
     }

@@ -38,11 +38,23 @@ static bool can_be(const struct generator *g, const struct field *f)
     return false;
 }
 
+/* What makes a figure depend on time, on operations without need, or on more than the elements'
+ * failures on demand: for registers of which no oracle computes the figures. */
+static const char *const involved[] = {
+    "undetected",     "detected",  "repair",   "plant-out-while-repaired",
+    "out-of-service", "exercised", "test",     "unwanted",
+    "steady",         "disables",  "trips-on", NULL};
+/* Must agree with other fields: only where somebody puts them. */
+static const char *const agreed[] = {"since",       "when-known",         "next",
+                                     "revealed-by", "breaker-failure-of", NULL};
+
 static bool is_wanted(struct generator *g, const struct field *f)
 {
     if (f->flags & REQUIRED)
         return true;
-    if ((f->flags & LATER) && !g->shape.stored)
+    if (is_among(agreed, f->key))
+        return false;
+    if (((f->flags & LATER) || is_among(involved, f->key)) && !g->shape.stored)
         return false;
     return random_chance(g, 5) && can_be(g, f);
 }
@@ -362,6 +374,7 @@ static void add_percentile_rate(struct generator *g)
     if (g->ids[KIND_SOURCE].n)
         put_text(g, prior, "source", random_id(g, KIND_SOURCE));
     put_text(g, m, "per", "km a");
+    put_text(g, m, "since", "1998-03-01");
     put_node(g, m, "prior", prior);
     fill_fields(g, m, kinds[KIND_RATE].table, skip);
     put_node(g, (struct node *)node_get(g->root, "rates"), "rate-stored", m);
@@ -376,11 +389,68 @@ static void add_unwanted(struct generator *g)
     put_node(g, (struct node *)node_get(g->root, "values"), "unwanted-trips", make_scalar(g, text));
 }
 
+/* Two elements of which one fails with the other, by beta or by alpha factors. */
 static void add_common_causes(struct generator *g)
 {
-    struct node *m = make_map(g);
-    fill_fields(g, m, kinds[KIND_COMMON_CAUSE].table, NULL);
+    static const char *const skip[] = {"of", "found-by", "staggered", NULL};
+    struct node *m = make_map(g), *of = make_list(g), *factors = make_list(g);
+    node_push(g->arena, of, make_scalar(g, "E-DATED"));
+    node_push(g->arena, of, make_scalar(g, "E-OTHER"));
+    put_node(g, m, "of", of);
+    if (random_chance(g, 2))
+        put_text(g, m, "found-by", "E-OTHER");
+    if (random_chance(g, 2)) {
+        put_text(g, m, "beta", "4 %");
+    } else {
+        node_push(g->arena, factors, make_scalar(g, "0.95"));
+        node_push(g->arena, factors, make_scalar(g, "5 %"));
+        put_node(g, m, "factors", factors);
+        if (random_chance(g, 2))
+            put_text(g, m, "staggered", "yes");
+    }
+    fill_fields(g, m, kinds[KIND_COMMON_CAUSE].table, skip);
     put_node(g, g->root, "common-cause", make_pair(g, "CC-1", m));
+}
+
+/* Elements whose dates agree. */
+static void add_dated_elements(struct generator *g)
+{
+    struct node *m = make_map(g), *test = make_map(g), *by = make_list(g);
+    struct node *section = (struct node *)node_get(g->root, "elements");
+    put_text(g, test, "every", "4 a");
+    put_text(g, test, "last", "2021-05-06");
+    put_text(g, test, "next", "2027-02-03");
+    put_node(g, m, "test", test);
+    put_text(g, m, "since", "2011-03-01");
+    put_text(g, m, "when-known", "2019-03-01");
+    put_text(g, m, "undetected", "0.01 per a");
+    if (g->ids[KIND_HAZARD].n) {
+        node_push(g->arena, by, make_scalar(g, random_id(g, KIND_HAZARD)));
+        put_node(g, m, "revealed-by", by);
+    }
+    put_node(g, section, "E-DATED", m);
+    put_node(g, section, "E-OTHER", make_pair(g, "per-demand", make_scalar(g, "2e-3")));
+}
+
+/* A hazard whose second row backs up the breaker of the first one. */
+static void add_breaker_failure(struct generator *g)
+{
+    struct node *m = make_map(g), *rows = make_map(g), *first = make_map(g), *second = make_map(g);
+    put_text(g, first, "cleared-by", "E-OTHER");
+    put_text(g, first, "in", "100 ms");
+    put_text(g, first, "outcome", "none");
+    put_text(g, second, "cleared-by", "E-OTHER");
+    put_text(g, second, "in", "300 ms");
+    put_text(g, second, "breaker-failure-of", "first");
+    put_text(g, second, "outcome", "none");
+    put_node(g, rows, "first", first);
+    put_node(g, rows, "second", second);
+    put_node(g, rows, "never", make_pair(g, "outcome", make_scalar(g, "none")));
+    put_text(g, m, "name", "Breaker failure");
+    put_text(g, m, "frequency", "0.1 per a");
+    put_node(g, m, "response", rows);
+    put_node(g, m, "outcomes", make_map(g));
+    put_node(g, (struct node *)node_get(g->root, "hazards"), "H-BACKED", m);
 }
 
 void registers_add_stored(struct generator *g)
@@ -389,7 +459,9 @@ void registers_add_stored(struct generator *g)
     add_plans(g);
     add_trees(g);
     add_percentile_rate(g);
+    add_dated_elements(g);
     add_common_causes(g);
+    add_breaker_failure(g);
     if (g->ids[KIND_SCHEME].n)
         add_unwanted(g);
 }

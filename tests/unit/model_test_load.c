@@ -151,7 +151,7 @@ START_TEST(circles)
           "outcomes: {}}\n"
           "  H: {name: Y, frequency: 0.5 * frequency(G), response: {x: {outcome: none}}, "
           "outcomes: {}}\n",
-          3, 33, "G -> H -> G");
+          2, 33, "H -> G -> H");
 }
 END_TEST
 

@@ -170,8 +170,8 @@ START_TEST(large_register_loads)
     struct model_sources sources = sources_of(&s, random_register(s.arena, 5, &shape));
     const struct model *m = model_load(s.arena, sources.at, sources.n, &s.diags);
     sheet_fine(&s);
-    ck_assert_uint_eq(m->of[KIND_HAZARD].n, 2000);
-    ck_assert_uint_eq(m->of[KIND_ELEMENT].n, 1000);
+    ck_assert_uint_eq(m->of[KIND_HAZARD].n, 2001);
+    ck_assert_uint_eq(m->of[KIND_ELEMENT].n, 1002);
 }
 END_TEST
 
