@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Compiling values, rates, types and elements; expressions and quantities as nodes.
+/* Compiling values and rates; expressions and quantities as nodes; what an object needs first.
  *
  * Sections do not nest: whatever an object reads is compiled before its own section is
  * opened. */
@@ -38,8 +38,7 @@ static node_id compile_call(struct building *b, enum graph_op op, const struct e
 
 static node_id compile_frequency(struct building *b, const char *hazard)
 {
-    const struct hazard_exports *x = compiled_of(b, hazard)->exports;
-    return b->figures->list.at[x->frequency].node;
+    return figure_at(b->figures, compiled_part(b, hazard, PART_FREQUENCY)->main)->node;
 }
 
 node_id compile_expr(struct building *b, const struct expr *e)
@@ -191,72 +190,55 @@ static ohmen_status compile_rate(struct figures *f, const struct variant *v, con
     return OHMEN_OK;
 }
 
-static ohmen_status compile_record(struct figures *f, const struct variant *v,
-                                   const struct object *o, const struct demand_record *r,
-                                   const char *source, struct compiled **out, ohmen_error *e)
-{
-    const struct quantity *q = posterior_demands(f->arena, r);
-    (void)e;
-    *out = compile_main(f, v, o, PROPERTY_FAILS, q, r->source ? r->source : source);
-    return OHMEN_OK;
-}
-
-/* An element without data of its own is its type. */
-static ohmen_status compile_element(struct figures *f, const struct variant *v,
-                                    const struct object *o, struct compiled **out, ohmen_error *e)
-{
-    const struct element *x = o->data;
-    if (x->per_demand)
-        return compile_record(f, v, o, x->per_demand, x->source, out, e);
-    const struct element_type *t = x->type ? model_get(v->model, KIND_TYPE, x->type) : NULL;
-    if (!t || !t->per_demand)
-        return error_set(
-            e, OHMEN_COMPUTE,
-            "the element \"%s\" has no probability of failure on demand (\"per-demand\"), nor "
-            "has its type; failures in time are stored but not evaluated by this version",
-            o->id);
-    struct building b;
-    compiled_begin(f, v, o, o->id, &b);
-    b.unit->main =
-        compiled_add(&b, PROPERTY_FAILS, NULL, NULL, compiled_main_node(&b, x->type), NULL, NULL);
-    compiled_end(&b);
-    *out = b.unit;
-    return OHMEN_OK;
-}
-
-static ohmen_status compile_type(struct figures *f, const struct variant *v, const struct object *o,
-                                 struct compiled **out, ohmen_error *e)
-{
-    const struct element_type *t = o->data;
-    if (t->per_demand)
-        return compile_record(f, v, o, t->per_demand, t->source, out, e);
-    struct building b; /* a type without data: nothing to export */
-    compiled_begin(f, v, o, o->id, &b);
-    compiled_end(&b);
-    *out = b.unit;
-    (void)e;
-    return OHMEN_OK;
-}
-
 /* --- references first --- */
 
+static ohmen_status compile_frequency_of(struct figures *f, const struct variant *v,
+                                         const struct object *o, ohmen_error *e)
+{
+    const struct variant *projected;
+    ohmen_status status = variant_project(f, v, o->id, &projected, e);
+    struct building under = {.figures = f, .variant = projected};
+    if (status != OHMEN_OK || compiled_part(&under, o->id, PART_FREQUENCY))
+        return status;
+    o = model_find(projected->model, o->id);
+    status = compile_references_at(f, projected, o, "frequency", e);
+    if (status == OHMEN_OK)
+        compile_frequency_unit(f, projected, o);
+    return status;
+}
+
 /* Schemes export nothing to others: their elements do. */
-static ohmen_status compile_one_reference(struct figures *f, const struct variant *v,
-                                          const struct object *to, ohmen_error *e)
+static ohmen_status compile_referred(struct figures *f, const struct variant *v,
+                                     const struct reference *r, const struct object *to,
+                                     ohmen_error *e)
 {
     const struct compiled *unused;
+    if (to->kind == KIND_SCHEME)
+        return compile_references(f, v, to, e);
+    if (to->kind == KIND_HAZARD && r->frequency)
+        return compile_frequency_of(f, v, to, e);
+    ohmen_status status = figures_compile(f, v, to->id, &unused, e);
+    if (status == OHMEN_OK && to->kind == KIND_ELEMENT)
+        status = compile_alone(f, v, to->id, e);
+    return status;
+}
+
+static ohmen_status compile_one_reference(struct figures *f, const struct variant *v,
+                                          const struct reference *r, const struct object *to,
+                                          ohmen_error *e)
+{
     if (f->depth >= COMPILE_DEPTH)
         return error_set(e, OHMEN_COMPUTE, "\"%s\" depends on others more than %d deep", to->id,
                          COMPILE_DEPTH);
     f->depth++;
-    ohmen_status status = to->kind == KIND_SCHEME ? compile_references(f, v, to, e)
-                                                  : figures_compile(f, v, to->id, &unused, e);
+    ohmen_status status = compile_referred(f, v, r, to, e);
     f->depth--;
     return status;
 }
 
-ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
-                                ohmen_error *e)
+/* Only what stands at this path of the object; NULL: everything. */
+ohmen_status compile_references_at(struct figures *f, const struct variant *v,
+                                   const struct object *o, const char *path, ohmen_error *e)
 {
     ohmen_status fine = refuse_unsupported(f, o, e);
     if (fine != OHMEN_OK)
@@ -265,19 +247,29 @@ ohmen_status compile_references(struct figures *f, const struct variant *v, cons
         const struct reference *r = &o->refs.at[i];
         const struct object *to = model_find(v->model, r->id);
         if (r->trace || r->later || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
-            to->kind == KIND_COMMON_CAUSE)
+            to->kind == KIND_COMMON_CAUSE || (path && !text_equal(path, r->path)))
             continue;
-        ohmen_status status = compile_one_reference(f, v, to, e);
+        ohmen_status status = compile_one_reference(f, v, r, to, e);
         if (status != OHMEN_OK)
             return status;
     }
     return OHMEN_OK;
 }
 
+ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
+                                ohmen_error *e)
+{
+    return compile_references_at(f, v, o, NULL, e);
+}
+
 static ohmen_status compile_object(struct figures *f, const struct variant *v,
                                    const struct object *o, struct compiled **out, ohmen_error *e)
 {
     ohmen_status status = compile_references(f, v, o, e);
+    if (status == OHMEN_OK && o->kind == KIND_HAZARD)
+        status = compile_frequency_of(f, v, o, e);
+    if (status == OHMEN_OK && o->kind == KIND_COMMON_CAUSE)
+        status = compile_group(f, v, o, e);
     if (status != OHMEN_OK)
         return status;
     switch (o->kind) {
@@ -287,6 +279,11 @@ static ohmen_status compile_object(struct figures *f, const struct variant *v,
     case KIND_ELEMENT: return compile_element(f, v, o, out, e);
     case KIND_SCHEME: return compile_scheme(f, v, o, out, e);
     case KIND_HAZARD: return compile_hazard(f, v, o, out, e);
+    case KIND_COMMON_CAUSE: {
+        struct building under = {.figures = f, .variant = v};
+        *out = (struct compiled *)compiled_of(&under, o->id);
+        return OHMEN_OK;
+    }
     default:
         return error_set(e, OHMEN_COMPUTE, "\"%s\" is %s, which has no figures in this version",
                          o->id, kinds_words(f->arena, KIND_BIT(o->kind)));

@@ -11,6 +11,8 @@ struct building {
     const struct variant *variant; /* projected */
     struct compiled *unit;
     node_id clearance; /* time of the row that is being compiled */
+    const struct window *year; /* rates with a trend are taken in this year, counted from the
+                                  start of the horizon; NULL: on the day of evaluation */
 };
 
 /* Opens the section of a new unit and registers it under its key; close with
@@ -29,14 +31,33 @@ figure_id compiled_add(struct building *b, enum property p, const char *q1, cons
 ohmen_status variant_project(struct figures *f, const struct variant *v, const char *id,
                              const struct variant **out, ohmen_error *e);
 
+/* Units beside the main one of an object: the frequency of a hazard, which elements may ask for;
+ * what an element does beside its common causes. NULL: the main one. */
+#define PART_FREQUENCY "frequency"
+#define PART_ALONE "alone"
+void compiled_begin_part(struct figures *f, const struct variant *projected, const struct object *o,
+                         const char *id, const char *part, struct building *b);
+
 /* A unit that was compiled, under the projection of the building's variant. */
 const struct compiled *compiled_of(const struct building *b, const char *id);
+const struct compiled *compiled_part(const struct building *b, const char *id, const char *part);
 node_id compiled_main_node(const struct building *b, const char *id);
 
 /* Compiles everything that an object refers to for computing. OHMEN_COMPUTE when one of its
  * quantities is of a sort that this version stores but does not evaluate. */
 ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
                                 ohmen_error *e);
+
+ohmen_status compile_references_at(struct figures *f, const struct variant *v,
+                                   const struct object *o, const char *path, ohmen_error *e);
+
+/* The frequency of a hazard as a unit of its own: the mean over the horizon, and for each year
+ * where it has a trend. */
+struct frequency_exports {
+    node_id mean;
+    const node_id *yearly; /* by year of the horizon; NULL: no trend */
+};
+void compile_frequency_unit(struct figures *f, const struct variant *v, const struct object *o);
 
 /* Nodes. */
 node_id compile_const(struct building *b, double value, struct dim d, const char *text);
@@ -51,29 +72,77 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
 ohmen_status compile_scheme(struct figures *f, const struct variant *v, const struct object *o,
                             struct compiled **out, ohmen_error *e);
 
+/* --- elements in time (element.c), common causes (common_cause.c) --- */
+
+ohmen_status compile_element(struct figures *f, const struct variant *v, const struct object *o,
+                             struct compiled **out, ohmen_error *e);
+ohmen_status compile_type(struct figures *f, const struct variant *v, const struct object *o,
+                          struct compiled **out, ohmen_error *e);
+/* The common causes that an element is a member of, in byte order. */
+struct groups ARRAY_BODY(const struct object *);
+void groups_of(struct figures *f, const struct model *m, const char *element, struct groups *out);
+/* What remains of an element beside its common causes, and these. Compiled beside the element
+ * wherever something refers to it; without common causes nothing is there. */
+ohmen_status compile_alone(struct figures *f, const struct variant *v, const char *element,
+                           ohmen_error *e);
+
+/* Makes a behaviour of its parts (any of which may be NODE_NONE) and registers its figures with
+ * these qualifiers: standing, course, fails. `when` may be NULL: nothing happens in time. */
+struct making {
+    size_t n_standing;
+    node_id standing[4];
+    node_id undetected, finds, revealed, left;
+    bool tested;
+    struct course when;
+    bool dated;
+    const char *q1, *q2;
+};
+/* Its own kind, else that of its type: index into element_kinds, or -1. */
+int element_kind(const struct model *m, const struct element *x);
+bool element_is_breaker(const struct model *m, const struct element *x);
+/* Sets tested, when and dated of a making as the element's documents say. */
+void element_instants(const struct figures *f, const struct element *x, struct making *m);
+/* A common cause and its members. */
+ohmen_status compile_group(struct figures *f, const struct variant *v, const struct object *o,
+                           ohmen_error *e);
+struct behaviour compile_behaviour(struct building *b, const struct making *m, struct span *span);
+
 /* --- schemes as Boolean functions (structure.c) --- */
 
 struct wiring {
-    struct figures *figures;
-    const struct model *model;
+    struct building under; /* where elements and common causes are looked up */
     struct diagram_builder *builder;
-    ARRAY(const char *) variables; /* element ids and rows of `sees`, in order */
-    ARRAY(bool) is_sees;
-    struct strmap index; /* id -> (void *)(index + 1) */
-    struct strmap works; /* scheme or element id -> (void *)(bfun + 1) */
+    const struct rows *disables; /* of the hazard, or NULL */
+    ARRAY(struct event) events;  /* by variable, in order */
+    struct strmap index;         /* name of the event -> (void *)(variable + 1) */
+    struct strmap works;         /* scheme -> (void *)(bfun + 1) */
+    struct strmap trips;         /* the same with sound breakers */
     unsigned depth;
     bool too_deep;
 };
-void wiring_init(struct wiring *w, struct figures *f, const struct model *m);
+void wiring_init(struct wiring *w, struct figures *f, const struct variant *v,
+                 const struct rows *disables);
 /* Gives every element below `id` its variable, depth first along the chain. */
 void wiring_order(struct wiring *w, const char *id);
 /* "works" as a function of the elements' failures. */
 bfun wiring_works(struct wiring *w, const char *id);
+/* The same with every breaker taken as sound: the protection operates. */
+bfun wiring_trips(struct wiring *w, const char *id);
 bfun wiring_sees(struct wiring *w, const char *row);
-/* "NH-CT1 and (NH-51A or NH-51B)": a scheme in the names of its elements; in parentheses
- * when it is composite and not `bare`. */
-void wiring_text(struct text *t, const struct model *m, const char *id, bool bare);
-/* Nodes of the variables' probabilities: failures of elements, shares of `sees`. */
-node_id wiring_argument(struct building *b, const struct wiring *w, size_t variable);
+/* The arguments of the diagram, in order of variables; those of `sees` and of what the hazard
+ * disables are figures of the unit under construction, and get their behaviour here. */
+node_id *wiring_arguments(struct building *b, struct wiring *w);
+/* The behaviours of all events, for span_of. */
+const struct behaviour *const *wiring_behaviours(struct arena *a, const struct wiring *w);
+
+/* "NH-CT1 and (NH-51A or NH-51B)": a scheme in the names of events, as hazard `h` (or NULL) sees
+ * it; in parentheses when it is composite and not `bare`; with sound breakers where `trips`. */
+struct wording {
+    struct figures *figures;
+    const struct variant *variant;
+    const struct hazard *hazard; /* or NULL */
+    bool trips;
+};
+void wiring_text(struct text *t, const struct wording *w, const char *id, bool bare);
 
 #endif

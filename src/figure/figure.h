@@ -21,6 +21,21 @@
     X(VALUE, "value", "a named value")                                                             \
     X(RATE, "rate", "a rate per exposure and time")                                                \
     X(FAILS, "fails", "probability of failure to operate on demand")                               \
+    X(ON_DEMAND, "on-demand", "probability of failure on demand, the same at all times")           \
+    X(UNDETECTED, "undetected", "rate of failures that only a test or a demand shows")             \
+    X(DETECTED, "detected", "rate of failures that supervision shows")                             \
+    X(REPAIR, "repair", "time to repair once a failure is known")                                  \
+    X(IN_REPAIR, "in-repair", "share of time in repair after detected failures")                   \
+    X(IN_TEST, "in-test", "share of time out of service for routine tests")                        \
+    X(OUT, "out-of-service", "share of time out of service for other reasons")                     \
+    X(FINDS, "finds", "share of undetected failures that the routine test finds")                  \
+    X(TESTED, "tested", "rate of undetected failures that the routine test finds")                 \
+    X(UNTESTED, "untested", "rate of undetected failures that no routine test finds")              \
+    X(REVEALED, "revealed", "how often demands and operations show whether it works")              \
+    X(LEFT, "left-failed", "probability that a routine test leaves it failed")                     \
+    X(STANDING, "standing", "probability of failure that does not change with time")               \
+    X(COURSE, "course", "probability of failure over time: here at the start of the horizon")      \
+    X(BETA, "beta", "share of failures with a common cause")                                       \
     X(FREQUENCY, "frequency", "how often a hazard, or one of its outcomes, occurs")                \
     X(END, "end", "probability of one end of the event tree, given the hazard")                    \
     X(PROBABILITY, "probability", "probability of an outcome, given the hazard")                   \
@@ -54,6 +69,48 @@ extern const struct property_info {
 typedef uint32_t figure_id;
 #define FIGURE_NONE UINT32_MAX
 
+/* How something fails: at all times alike, or over time. */
+struct behaviour {
+    node_id node;          /* argument of diagrams: a number, or a COURSE */
+    figure_id fails;       /* its mean over the horizon, or the long-run average */
+    figure_id course;      /* FIGURE_NONE unless timed */
+    bool timed;            /* it is a COURSE */
+    bool dated;            /* it has a date of its own, or a part that is never tested */
+    bool ages;             /* some part of it is never reset */
+    struct course when;    /* timed: years from the start of the horizon */
+};
+
+/* The time over which figures are averaged: see figure/span.h. */
+struct span {
+    struct windows windows; /* n = 0: nothing changes with time */
+    bool yearly;            /* windows are years of the horizon */
+    uint32_t years;         /* of the horizon */
+    const uint32_t *of_year; /* yearly: the window that holds in each */
+};
+
+/* What an element shows to common causes and to the report. */
+struct element_exports {
+    struct behaviour whole; /* all of its failures, whatever their cause */
+    /* Its parts, or NODE_NONE. The two rates are before any split by common causes. */
+    node_id on_demand, undetected, detected, repair, finds, revealed, left;
+    node_id other; /* out of service, in test: never of a common cause; or NODE_NONE */
+    bool tested;
+    double every; /* years between tests; 0: none */
+    struct span span;
+};
+
+/* Failures that several elements have in common: one shock for each set of members. */
+struct shock {
+    const char *name; /* "CC.A.B" */
+    size_t n;
+    const char *const *members; /* in byte order */
+    struct behaviour fails;
+};
+struct group_exports {
+    size_t n;
+    const struct shock *shocks;
+};
+
 struct figure {
     uint32_t unit; /* index of the compiled object in `units` */
     enum property property;
@@ -79,8 +136,9 @@ struct compiled {
     section_id section;
     figure_id first;
     size_t n;       /* figures */
-    void *exports;  /* struct hazard_exports for hazards */
+    void *exports;  /* struct hazard_exports, element_exports, group_exports, ... by kind */
     figure_id main; /* value, rate, fails, risk */
+    const struct compiled *also; /* another unit with figures of the same object, or NULL */
 };
 
 struct figures {
@@ -96,6 +154,8 @@ struct figures {
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
     struct strmap variants;        /* "A+B" -> struct variant */
     struct strmap used_by;         /* id -> struct objects: what refers to it, in the base */
+    struct strmap groups;          /* element -> struct groups: its common causes in the base */
+    size_t n_indexed;              /* common causes of the base that are in `groups` */
     ARRAY(const struct quantity *) inputs;
     ARRAY(figure_id) of_node;     /* first figure of a node */
     ARRAY(const char *) literals; /* text of a CONST node, or NULL */
@@ -137,11 +197,14 @@ figure_id compiled_figure(const struct figures *f, const struct compiled *u, enu
 
 /* --- hazards --- */
 
-/* A scheme works, or does not; with `sees_row` also: and its function sees the fault. */
+/* A scheme works, or does not; with `sees_row` also: and its function sees the fault; with
+ * `tripped_by` also: and the scheme of that name, its breakers taken as sound, works (and, with
+ * `tripped_row`, sees the fault). */
 struct condition {
     const struct condition *before;
     const char *id;
     const char *sees_row;
+    const char *tripped_by, *tripped_row;
     bool works;
 };
 
@@ -156,11 +219,30 @@ struct end {
                                       FIGURE_NONE for none */
     uint32_t root;                 /* of the diagram */
 };
+/* A variable of a hazard's or a scheme's diagram. */
+enum event_kind {
+    EVENT_ELEMENT, /* the element fails; of one with common causes: alone, by itself */
+    EVENT_SHOCK,   /* elements fail together */
+    EVENT_SEES,    /* true when the function of a row sees the fault */
+    EVENT_DISABLED /* the hazard puts an element out of action */
+};
+struct event {
+    enum event_kind kind;
+    const char *id;   /* of the element, the common cause, or the row */
+    const char *name; /* in formulas, where it stands for its success (but sees.ROW) */
+    struct behaviour fails;
+};
+
 struct hazard_exports {
     const struct diagram *diagram;
-    size_t n_variables;
-    const char **variables; /* element ids; a `sees` variable has its row's name */
-    bool *is_sees;
+    node_id node; /* DIAGRAM */
+    size_t n_events;
+    const struct event *events; /* by variable */
+    struct span span;
+    /* Risk by year of the horizon: figures risk[of_year[y]], or one for all years. */
+    size_t n_yearly;
+    const figure_id *yearly;
+    const uint32_t *of_year; /* NULL: yearly[0] holds in all */
     struct end *ends;
     size_t n_ends;
     size_t n_outcomes; /* as the keys of the hazard's outcomes */
@@ -170,8 +252,10 @@ struct hazard_exports {
 
 struct scheme_exports {
     const struct diagram *diagram; /* root 0: the scheme fails */
-    size_t n_variables;
-    const char **variables;
+    node_id node;                  /* DIAGRAM */
+    size_t n_events;
+    const struct event *events;
+    struct span span;
 };
 
 /* --- explaining --- */

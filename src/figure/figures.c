@@ -51,13 +51,14 @@ ohmen_status figures_new(struct arena *a, const struct model *base, const char *
 
 /* --- units --- */
 
-static const char *compiled_key(struct figures *f, const char *id, const struct variant *v)
+static const char *compiled_key(struct figures *f, const char *id, const char *part,
+                                const struct variant *v)
 {
-    if (v->n == 0)
+    if (v->n == 0 && !part)
         return id;
     struct text t;
     text_init(&t, f->arena);
-    text_printf(&t, "%s@", id);
+    text_printf(&t, part ? "%s/%s@" : "%s@", id, part);
     for (size_t i = 0; i < v->n; i++)
         text_printf(&t, "%s%s", i ? "+" : "", v->options[i]);
     return text_str(&t);
@@ -66,12 +67,18 @@ static const char *compiled_key(struct figures *f, const char *id, const struct 
 void compiled_begin(struct figures *f, const struct variant *projected, const struct object *o,
                     const char *id, struct building *b)
 {
+    compiled_begin_part(f, projected, o, id, NULL, b);
+}
+
+void compiled_begin_part(struct figures *f, const struct variant *projected, const struct object *o,
+                         const char *id, const char *part, struct building *b)
+{
     struct compiled *u = NEW(f->arena, struct compiled);
     *u = (struct compiled){.object = o, .id = id, .variant = projected, .main = FIGURE_NONE};
     u->first = (figure_id)f->list.n;
     u->section = graph_section_begin(f->graph, (uint32_t)f->units.n);
     *array_push(f->arena, &f->units) = u;
-    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, id, projected), u);
+    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, id, part, projected), u);
     *b = (struct building){.figures = f, .variant = projected, .unit = u};
 }
 
@@ -84,7 +91,7 @@ void compiled_give_up(struct building *b)
 {
     struct figures *f = b->figures;
     compiled_end(b);
-    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, b->unit->id, b->variant), NULL);
+    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, b->unit->id, NULL, b->variant), NULL);
 }
 
 static void name_node(struct figures *f, node_id node, figure_id id)
@@ -114,10 +121,16 @@ figure_id compiled_add(struct building *b, enum property p, const char *q1, cons
 
 const struct compiled *compiled_of(const struct building *b, const char *id)
 {
+    return compiled_part(b, id, NULL);
+}
+
+const struct compiled *compiled_part(const struct building *b, const char *id, const char *part)
+{
     const struct variant *projected;
     if (variant_project(b->figures, b->variant, id, &projected, NULL) != OHMEN_OK)
         return NULL;
-    return strmap_get(&b->figures->compiled_by_key, compiled_key(b->figures, id, projected));
+    return strmap_get(&b->figures->compiled_by_key,
+                      compiled_key(b->figures, id, part, projected));
 }
 
 node_id compiled_main_node(const struct building *b, const char *id)
@@ -139,7 +152,7 @@ figure_id compiled_figure(const struct figures *f, const struct compiled *u, enu
         if (g->property == p && same(g->q1, q1) && same(g->q2, q2))
             return i;
     }
-    return FIGURE_NONE;
+    return u->also ? compiled_figure(f, u->also, p, q1, q2) : FIGURE_NONE;
 }
 
 /* --- figures --- */
@@ -194,13 +207,17 @@ static ohmen_status not_finite(struct figures *f, node_id culprit, ohmen_error *
 
 static bool is_probability(enum property p)
 {
-    return p == PROPERTY_FAILS || p == PROPERTY_SHARE;
+    return p == PROPERTY_FAILS || p == PROPERTY_SHARE || p == PROPERTY_ON_DEMAND ||
+           p == PROPERTY_IN_REPAIR || p == PROPERTY_IN_TEST || p == PROPERTY_OUT ||
+           p == PROPERTY_FINDS || p == PROPERTY_LEFT || p == PROPERTY_STANDING ||
+           p == PROPERTY_COURSE || p == PROPERTY_BETA;
 }
 
 static bool must_not_be_negative(enum property p)
 {
     return p == PROPERTY_FREQUENCY || p == PROPERTY_DAMAGE || p == PROPERTY_RATE ||
-           p == PROPERTY_INVEST || p == PROPERTY_RUNNING;
+           p == PROPERTY_UNDETECTED || p == PROPERTY_DETECTED || p == PROPERTY_REPAIR ||
+           p == PROPERTY_REVEALED || p == PROPERTY_INVEST || p == PROPERTY_RUNNING;
 }
 
 /* What an expression of names gives can only be seen here. */

@@ -49,14 +49,15 @@ ohmen_status compiled_find(struct figures *f, const struct compiled *u, const ch
     const char *wanted = arena_printf(f->arena, "%s.%s", u->id, rest);
     struct nearest near;
     nearest_init(&near, rest);
-    for (figure_id i = u->first; i < u->first + u->n; i++) {
-        const char *name = without_variant(f->arena, figure_name(f, f->arena, i));
-        if (text_equal(name, wanted)) {
-            *out = i;
-            return OHMEN_OK;
+    for (const struct compiled *part = u; part; part = part->also)
+        for (figure_id i = part->first; i < part->first + part->n; i++) {
+            const char *name = without_variant(f->arena, figure_name(f, f->arena, i));
+            if (text_equal(name, wanted)) {
+                *out = i;
+                return OHMEN_OK;
+            }
+            nearest_offer(&near, name + strlen(u->id) + 1);
         }
-        nearest_offer(&near, name + strlen(u->id) + 1);
-    }
     if (!*rest && u->main != FIGURE_NONE)
         return error_set(e, OHMEN_UNKNOWN, "\"%s\" is an object; its main figure is %s", u->id,
                          figure_name(f, f->arena, u->main));

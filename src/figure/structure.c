@@ -9,22 +9,104 @@
 /* Schemes may stand in schemes this deep. */
 #define SCHEME_DEPTH 200
 
-void wiring_init(struct wiring *w, struct figures *f, const struct model *m)
+void wiring_init(struct wiring *w, struct figures *f, const struct variant *v,
+                 const struct rows *disables)
 {
-    *w = (struct wiring){.figures = f, .model = m, .builder = diagram_builder_new(f->arena)};
+    *w = (struct wiring){.under = {.figures = f, .variant = v},
+                         .builder = diagram_builder_new(f->arena),
+                         .disables = disables};
 }
 
-static size_t variable_of(struct wiring *w, const char *id, bool sees)
+static struct arena *arena_of(const struct wiring *w)
 {
-    const char *key = sees ? arena_printf(w->figures->arena, "sees/%s", id) : id;
-    uintptr_t known = (uintptr_t)strmap_get(&w->index, key);
-    if (known)
-        return known - 1;
-    *array_push(w->figures->arena, &w->variables) = id;
-    *array_push(w->figures->arena, &w->is_sees) = sees;
-    strmap_set(w->figures->arena, &w->index, key, (void *)(uintptr_t)w->variables.n);
-    return w->variables.n - 1;
+    return w->under.figures->arena;
 }
+
+static const struct model *model_of(const struct wiring *w)
+{
+    return w->under.variant->model;
+}
+
+/* The variable of an event, which is made when it is first met. */
+static uint32_t variable_of(struct wiring *w, const struct event *event)
+{
+    uintptr_t known = (uintptr_t)strmap_get(&w->index, event->name);
+    if (known)
+        return (uint32_t)known - 1;
+    *array_push(arena_of(w), &w->events) = *event;
+    strmap_set(arena_of(w), &w->index, event->name, (void *)(uintptr_t)w->events.n);
+    return (uint32_t)w->events.n - 1;
+}
+
+/* --- what fails when an element fails --- */
+
+/* An element by itself: beside its common causes, where it has some. */
+static struct event element_event(struct wiring *w, const char *id)
+{
+    const struct compiled *alone = compiled_part(&w->under, id, PART_ALONE);
+    const struct compiled *u = alone ? alone : compiled_of(&w->under, id);
+    const struct element_exports *x = u->exports;
+    const char *name = alone ? arena_printf(arena_of(w), "%s.alone", id) : u->id;
+    return (struct event){EVENT_ELEMENT, u->id, name, x->whole};
+}
+
+static struct event sees_event(struct wiring *w, const char *row)
+{
+    return (struct event){EVENT_SEES, row, arena_printf(arena_of(w), "sees.%s", row), {0}};
+}
+
+static bool is_disabled(const struct rows *disables, const char *element)
+{
+    for (size_t i = 0; disables && i < disables->n; i++)
+        if (text_equal(disables->keys[i], element))
+            return true;
+    return false;
+}
+
+static struct event disabled_event(struct wiring *w, const char *id)
+{
+    return (struct event){EVENT_DISABLED, id, arena_printf(arena_of(w), "spared.%s", id), {0}};
+}
+
+struct events ARRAY_BODY(struct event);
+
+static bool is_hit(const struct shock *s, const char *element)
+{
+    for (size_t i = 0; i < s->n; i++)
+        if (text_equal(s->members[i], element))
+            return true;
+    return false;
+}
+
+/* All events of which any one makes the element fail: itself first. */
+static void events_of(struct wiring *w, const char *id, struct events *out)
+{
+    struct groups groups = {0};
+    *array_push(arena_of(w), out) = element_event(w, id);
+    groups_of(w->under.figures, model_of(w), id, &groups);
+    for (size_t i = 0; i < groups.n; i++) {
+        const struct group_exports *x = compiled_of(&w->under, groups.at[i]->id)->exports;
+        for (size_t k = 0; k < x->n; k++)
+            if (is_hit(&x->shocks[k], id))
+                *array_push(arena_of(w), out) = (struct event){
+                    EVENT_SHOCK, groups.at[i]->id, x->shocks[k].name, x->shocks[k].fails};
+    }
+    if (is_disabled(w->disables, id))
+        *array_push(arena_of(w), out) = disabled_event(w, id);
+}
+
+static bfun element_works(struct wiring *w, const char *id)
+{
+    struct events events = {0};
+    bfun fails = BFUN_FALSE;
+    events_of(w, id, &events);
+    for (size_t i = 0; i < events.n; i++)
+        fails = diagram_or(w->builder, fails,
+                           diagram_variable(w->builder, variable_of(w, &events.at[i])));
+    return diagram_not(w->builder, fails);
+}
+
+/* --- order of variables --- */
 
 static void order_structure(struct wiring *w, const struct structure *s)
 {
@@ -34,16 +116,24 @@ static void order_structure(struct wiring *w, const struct structure *s)
         order_structure(w, s->of[i]);
 }
 
+static void order_element(struct wiring *w, const char *id)
+{
+    struct events events = {0};
+    events_of(w, id, &events);
+    for (size_t i = 0; i < events.n; i++)
+        variable_of(w, &events.at[i]);
+}
+
 void wiring_order(struct wiring *w, const char *id)
 {
-    const struct object *o = model_find(w->model, id);
+    const struct object *o = model_find(model_of(w), id);
     if (o->kind == KIND_ELEMENT) {
-        variable_of(w, id, false);
+        order_element(w, id);
         return;
     }
     if (strmap_has(&w->works, id))
         return;
-    strmap_set(w->figures->arena, &w->works, id, NULL); /* seen; its function comes later */
+    strmap_set(arena_of(w), &w->works, id, NULL); /* seen; its function comes later */
     if (w->depth >= SCHEME_DEPTH) {
         w->too_deep = true;
         return;
@@ -53,89 +143,138 @@ void wiring_order(struct wiring *w, const char *id)
     w->depth--;
 }
 
-static bfun structure_works(struct wiring *w, const struct structure *s)
+/* --- functions --- */
+
+static bfun function_of(struct wiring *w, const char *id, bool trips);
+
+static bfun structure_function(struct wiring *w, const struct structure *s, bool trips)
 {
     switch (s->op) {
-    case STRUCTURE_NAME: return wiring_works(w, s->name);
+    case STRUCTURE_NAME: return function_of(w, s->name, trips);
     case STRUCTURE_ABSENT: return BFUN_FALSE;
     case STRUCTURE_AT_LEAST: break;
     }
-    bfun *parts = NEW_ARRAY(w->figures->arena, s->n, bfun);
+    bfun *parts = NEW_ARRAY(arena_of(w), s->n, bfun);
     for (size_t i = 0; i < s->n; i++)
-        parts[i] = structure_works(w, s->of[i]);
+        parts[i] = structure_function(w, s->of[i], trips);
     return diagram_at_least(w->builder, s->k, s->n, parts);
+}
+
+static bfun function_of(struct wiring *w, const char *id, bool trips)
+{
+    const struct object *o = model_find(model_of(w), id);
+    struct strmap *known = trips ? &w->trips : &w->works;
+    if (o->kind == KIND_ELEMENT)
+        return trips && element_is_breaker(model_of(w), o->data) ? BFUN_TRUE
+                                                                 : element_works(w, id);
+    uintptr_t found = (uintptr_t)strmap_get(known, id);
+    if (found)
+        return (bfun)(found - 1);
+    bfun f = structure_function(w, ((const struct scheme *)o->data)->works, trips);
+    if (f != DIAGRAM_FULL)
+        strmap_set(arena_of(w), known, id, (void *)((uintptr_t)f + 1));
+    return f;
 }
 
 bfun wiring_works(struct wiring *w, const char *id)
 {
-    const struct object *o = model_find(w->model, id);
-    if (o->kind == KIND_ELEMENT) {
-        uint32_t v = (uint32_t)variable_of(w, id, false);
-        return diagram_not(w->builder, diagram_variable(w->builder, v));
-    }
-    uintptr_t known = (uintptr_t)strmap_get(&w->works, id);
-    if (known)
-        return (bfun)(known - 1);
-    bfun works = structure_works(w, ((const struct scheme *)o->data)->works);
-    if (works != DIAGRAM_FULL)
-        strmap_set(w->figures->arena, &w->works, id, (void *)((uintptr_t)works + 1));
-    return works;
+    return function_of(w, id, false);
+}
+
+bfun wiring_trips(struct wiring *w, const char *id)
+{
+    return function_of(w, id, true);
 }
 
 bfun wiring_sees(struct wiring *w, const char *row)
 {
-    return diagram_variable(w->builder, (uint32_t)variable_of(w, row, true));
+    struct event event = sees_event(w, row);
+    return diagram_variable(w->builder, variable_of(w, &event));
 }
 
-node_id wiring_argument(struct building *b, const struct wiring *w, size_t variable)
+/* --- arguments --- */
+
+node_id *wiring_arguments(struct building *b, struct wiring *w)
 {
-    const char *id = w->variables.at[variable];
-    if (!w->is_sees.at[variable])
-        return compiled_main_node(b, id);
-    figure_id share = compiled_figure(b->figures, b->unit, PROPERTY_SHARE, id, "sees");
-    return b->figures->list.at[share].node;
+    node_id *args = NEW_ARRAY(arena_of(w), w->events.n, node_id);
+    for (size_t i = 0; i < w->events.n; i++) {
+        struct event *e = &w->events.at[i];
+        bool sees = e->kind == EVENT_SEES;
+        if (sees || e->kind == EVENT_DISABLED) {
+            figure_id id = compiled_figure(b->figures, b->unit, PROPERTY_SHARE, e->id,
+                                           sees ? "sees" : "disabled");
+            e->fails = (struct behaviour){.node = figure_at(b->figures, id)->node,
+                                          .fails = id,
+                                          .course = FIGURE_NONE};
+        }
+        args[i] = e->fails.node;
+    }
+    return args;
+}
+
+const struct behaviour *const *wiring_behaviours(struct arena *a, const struct wiring *w)
+{
+    const struct behaviour **all = NEW_ARRAY(a, w->events.n, const struct behaviour *);
+    for (size_t i = 0; i < w->events.n; i++)
+        all[i] = &w->events.at[i].fails;
+    return all;
 }
 
 /* --- text --- */
 
-static void structure_text(struct text *t, const struct model *m, const struct structure *s,
+/* An element as the events of which none may happen: "(VH-51A.alone and CC.VH-51A.VH-51B)". */
+static void element_text(struct text *t, const struct wording *w, const char *id, bool bare)
+{
+    struct wiring events_only = {.under = {.figures = w->figures, .variant = w->variant},
+                                 .disables = w->hazard ? &w->hazard->disables : NULL};
+    struct events events = {0};
+    events_of(&events_only, id, &events);
+    text_add(t, events.n > 1 && !bare ? "(" : "");
+    for (size_t i = 0; i < events.n; i++)
+        text_printf(t, "%s%s", i ? " and " : "", events.at[i].name);
+    text_add(t, events.n > 1 && !bare ? ")" : "");
+}
+
+static void structure_text(struct text *t, const struct wording *w, const struct structure *s,
                            bool bare);
 
-static void join_parts(struct text *t, const struct model *m, const struct structure *s,
+static void join_parts(struct text *t, const struct wording *w, const struct structure *s,
                        const char *between)
 {
     for (size_t i = 0; i < s->n; i++) {
         text_add(t, i ? between : "");
-        structure_text(t, m, s->of[i], false);
+        structure_text(t, w, s->of[i], false);
     }
 }
 
 /* A composite stands in parentheses, unless it is bare; one part is itself. */
-static void structure_text(struct text *t, const struct model *m, const struct structure *s,
+static void structure_text(struct text *t, const struct wording *w, const struct structure *s,
                            bool bare)
 {
     if (s->op == STRUCTURE_NAME) {
-        wiring_text(t, m, s->name, bare);
+        wiring_text(t, w, s->name, bare);
     } else if (s->op == STRUCTURE_ABSENT) {
         text_add(t, "absent");
     } else if (s->n == 1) {
-        structure_text(t, m, s->of[0], bare);
+        structure_text(t, w, s->of[0], bare);
     } else if (s->k == s->n || s->k == 1) {
         text_add(t, bare ? "" : "(");
-        join_parts(t, m, s, s->k == 1 ? " or " : " and ");
+        join_parts(t, w, s, s->k == 1 ? " or " : " and ");
         text_add(t, bare ? "" : ")");
     } else {
         text_printf(t, "at-least(%u; ", s->k);
-        join_parts(t, m, s, "; ");
+        join_parts(t, w, s, "; ");
         text_byte(t, ')');
     }
 }
 
-void wiring_text(struct text *t, const struct model *m, const char *id, bool bare)
+void wiring_text(struct text *t, const struct wording *w, const char *id, bool bare)
 {
-    const struct object *o = model_find(m, id);
-    if (o->kind == KIND_ELEMENT)
-        text_add(t, id);
+    const struct object *o = model_find(w->variant->model, id);
+    if (o->kind != KIND_ELEMENT)
+        structure_text(t, w, ((const struct scheme *)o->data)->works, bare);
+    else if (w->trips && element_is_breaker(w->variant->model, o->data))
+        text_add(t, "certain");
     else
-        structure_text(t, m, ((const struct scheme *)o->data)->works, bare);
+        element_text(t, w, id, bare);
 }

@@ -87,6 +87,16 @@ static void reach_users(struct reaching *w, const char *id)
     }
 }
 
+/* What fails together with others changes when its common cause does. */
+static void reach_members(struct reaching *w, const struct object *o)
+{
+    if (!o || o->kind != KIND_COMMON_CAUSE)
+        return;
+    const struct common_cause *x = o->data;
+    for (size_t i = 0; i < x->of.n; i++)
+        reach(w, x->of.at[i]);
+}
+
 static void find_reached(struct figures *f, struct variant *v, size_t option)
 {
     struct reaching w = {.f = f, .variant = v, .reached = &v->reached[option]};
@@ -96,8 +106,11 @@ static void find_reached(struct figures *f, struct variant *v, size_t option)
         for (size_t i = 0; i < section->value->n; i++)
             reach(&w, section->value->pairs[i].key);
     }
-    for (size_t i = 0; i < w.todo.n; i++)
+    for (size_t i = 0; i < w.todo.n; i++) {
         reach_users(&w, w.todo.at[i]);
+        reach_members(&w, model_find(f->base, w.todo.at[i]));
+        reach_members(&w, model_find(v->model, w.todo.at[i]));
+    }
 }
 
 static ohmen_status make_variant(struct figures *f, size_t n, const char *const *options,
