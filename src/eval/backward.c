@@ -2,7 +2,8 @@
 /* Derivatives of one node with respect to all before it: one pass from the root
  * down, each node handing its derivative on by the backward rule of its row. The
  * derivative with respect to a DIAGRAM is kept apart for each of its results, in
- * `weights`, since the node itself is no number; its entry stays 0. */
+ * `weights`, since the node itself is no number; its entry stays 0. A DIAGRAM over
+ * windows hands on to the arguments of its courses, past the courses themselves. */
 #include "eval/state.h"
 
 #include <assert.h>
@@ -24,20 +25,53 @@ static void hand_on(const struct eval *v, node_id n, double *derivative)
         derivative[args[i]] += v->arg_back.at[i];
 }
 
-static void diagram_node_backward(struct eval *v, node_id n, double *derivative)
+/* The weights of a DIAGRAM's results; NULL where all are 0. */
+static const double *weights_of(const struct eval *v, node_id n)
+{
+    const double *weight = v->weights.at + (size_t)v->value.at[n];
+    size_t n_results = eval_results(v, n);
+    for (size_t k = 0; k < n_results; k++)
+        if (weight[k] != 0)
+            return weight;
+    return NULL;
+}
+
+/* Adds to dp what each probability of a DIAGRAM without windows does. */
+static void still_backward(struct eval *v, node_id n, const double *weight, double *dp)
 {
     const struct diagram *d = graph_diagram_of(v->g, n);
-    size_t place = (size_t)v->value.at[n];
-    const double *weight = v->weights.at + place;
-    bool any = false;
-    for (size_t k = 0; k < d->n_roots; k++)
-        any = any || weight[k] != 0;
-    if (!any)
-        return;
     v->work_back.at = cleared(v->arena, v->work_back.at, d->n_nodes + 2, &v->work_back.cap);
-    eval_diagram(v, n, v->results.at + place);
-    diagram_backward(d, v->args.at, v->q.at, v->work.at, weight, v->work_back.at,
-                     v->arg_back.at);
+    eval_diagram(v, n, v->results.at + (size_t)v->value.at[n]);
+    diagram_backward(d, v->args.at, v->q.at, v->work.at, weight, v->work_back.at, dp);
+}
+
+static void averaged_backward(struct eval *v, node_id n, const double *weight, double *derivative)
+{
+    struct averaged what = eval_averaged(v, n);
+    struct course_values *back = v->course_back.at =
+        array_room(v->arena, v->course_back.at, 0, &v->course_back.cap, what.n, sizeof *back);
+    memset(back, 0, what.n * sizeof *back);
+    struct average_slopes out = {.gain = v->arg_back.at, .by = (double(*)[COURSE_ARGS])back};
+    average_slopes(v->arena, &what, weight, &out);
+    for (size_t i = 0; i < what.n; i++) {
+        node_id arg = graph_args(v->g, n)[i];
+        if (!what.course[i])
+            derivative[arg] += v->arg_back.at[i];
+        for (int k = 0; what.course[i] && k < COURSE_ARGS; k++)
+            derivative[graph_args(v->g, arg)[k]] += back[i].x[k];
+    }
+}
+
+static void diagram_node_backward(struct eval *v, node_id n, double *derivative)
+{
+    const double *weight = weights_of(v, n);
+    if (!weight)
+        return;
+    if (graph_windows_of(v->g, n).n) {
+        averaged_backward(v, n, weight, derivative);
+        return;
+    }
+    still_backward(v, n, weight, v->arg_back.at);
     hand_on(v, n, derivative);
 }
 
@@ -57,8 +91,8 @@ static void node_backward(struct eval *v, node_id n, double *derivative)
         diagram_node_backward(v, n, derivative);
         return;
     }
-    graph_backward(node->op, node->n, eval_gather(v, n), v->value.at[n], derivative[n],
-                   v->arg_back.at);
+    graph_node_backward(v->g, n, eval_gather(v, n), v->value.at[n], derivative[n],
+                        v->arg_back.at);
     hand_on(v, n, derivative);
 }
 
@@ -70,4 +104,23 @@ void eval_backward(struct eval *v, node_id root, double *derivative)
     derivative[root] = 1;
     for (node_id n = root + 1; n-- > 0;)
         node_backward(v, n, derivative);
+}
+
+void eval_effects(struct eval *v, node_id diagram, double *gain, double *share)
+{
+    size_t n = graph_at(v->g, diagram)->n;
+    assert(diagram < v->done && v->weights.at);
+    for (size_t i = 0; i < n; i++)
+        gain[i] = share[i] = 0;
+    const double *weight = weights_of(v, diagram);
+    if (!weight)
+        return;
+    if (graph_windows_of(v->g, diagram).n) {
+        struct averaged what = eval_averaged(v, diagram);
+        average_slopes(v->arena, &what, weight, &(struct average_slopes){gain, share, NULL});
+        return;
+    }
+    still_backward(v, diagram, weight, gain);
+    for (size_t i = 0; i < n; i++)
+        share[i] = v->args.at[i] * gain[i];
 }

@@ -7,10 +7,6 @@
 #include <assert.h>
 #include <math.h>
 
-/* The array with room for at least n elements in all. */
-#define ROOM(v, arr, want) \
-    ((arr)->n = 0, array_reserve((v)->arena, (arr), (want)), (arr)->n = (want), (arr)->at)
-
 struct eval *eval_new(struct arena *a, const struct graph *g)
 {
     struct eval *v = NEW(a, struct eval);
@@ -38,28 +34,67 @@ static double complement_of(const struct eval *v, node_id n)
     return 1 - v->value.at[n];
 }
 
-void eval_diagram(struct eval *v, node_id n, double *results)
+size_t eval_results(const struct eval *v, node_id n)
 {
-    const struct diagram *d = graph_diagram_of(v->g, n);
+    size_t n_windows = graph_windows_of(v->g, n).n;
+    return graph_diagram_of(v->g, n)->n_roots * (n_windows ? n_windows : 1);
+}
+
+/* p and q of the variables of a DIAGRAM, in v->args and v->q. */
+static void gather_probabilities(struct eval *v, node_id n)
+{
     const node_id *args = graph_args(v->g, n);
     size_t count = graph_at(v->g, n)->n;
-    const double *p = eval_gather(v, n);
+    eval_gather(v, n);
     double *q = ROOM(v, &v->q, count);
     for (size_t i = 0; i < count; i++)
         q[i] = complement_of(v, args[i]);
-    diagram_evaluate(d, p, q, ROOM(v, &v->work, d->n_nodes + 2), results);
+}
+
+struct averaged eval_averaged(struct eval *v, node_id n)
+{
+    const node_id *args = graph_args(v->g, n);
+    size_t count = graph_at(v->g, n)->n;
+    gather_probabilities(v, n);
+    const struct course **courses = ROOM(v, &v->courses, count);
+    struct course_values *values = ROOM(v, &v->course_values, count);
+    for (size_t i = 0; i < count; i++) {
+        bool changes = graph_at(v->g, args[i])->op == OP_COURSE;
+        courses[i] = changes ? graph_course_of(v->g, args[i]) : NULL;
+        for (int k = 0; changes && k < COURSE_ARGS; k++)
+            values[i].x[k] = v->value.at[graph_args(v->g, args[i])[k]];
+    }
+    return (struct averaged){.diagram = graph_diagram_of(v->g, n),
+                             .n = count,
+                             .p = v->args.at,
+                             .q = v->q.at,
+                             .course = courses,
+                             .x = (const double(*)[COURSE_ARGS])values,
+                             .windows = graph_windows_of(v->g, n)};
+}
+
+void eval_diagram(struct eval *v, node_id n, double *results)
+{
+    const struct diagram *d = graph_diagram_of(v->g, n);
+    if (graph_windows_of(v->g, n).n) {
+        struct averaged what = eval_averaged(v, n);
+        average_values(v->arena, &what, results);
+        return;
+    }
+    gather_probabilities(v, n);
+    diagram_evaluate(d, v->args.at, v->q.at, ROOM(v, &v->work, d->n_nodes + 2), results);
 }
 
 /* The place of a DIAGRAM's results; NaN when one of them is not finite. */
 static double diagram_place(struct eval *v, node_id n)
 {
-    size_t n_roots = graph_diagram_of(v->g, n)->n_roots, place = v->results.n;
-    array_reserve(v->arena, &v->results, n_roots);
+    size_t n_results = eval_results(v, n), place = v->results.n;
+    array_reserve(v->arena, &v->results, n_results);
     eval_diagram(v, n, v->results.at + place);
-    for (size_t k = 0; k < n_roots; k++)
+    for (size_t k = 0; k < n_results; k++)
         if (!isfinite(v->results.at[place + k]))
             return NAN;
-    v->results.n += n_roots;
+    v->results.n += n_results;
     return (double)place;
 }
 
@@ -75,7 +110,7 @@ static double node_value(struct eval *v, node_id n)
     case OP_PICK:
         return v->results.at[(size_t)v->value.at[*graph_args(v->g, n)] + node->extra];
     default:
-        return graph_point(node->op, node->n, eval_gather(v, n));
+        return graph_node_point(v->g, n, eval_gather(v, n));
     }
 }
 

@@ -9,7 +9,12 @@
 #define EVAL_STATE_H
 
 #include "eval/eval.h"
+#include "graph/average.h"
 #include "graph/diagram.h"
+
+struct course_values {
+    double x[COURSE_ARGS];
+};
 
 struct eval {
     struct arena *arena;
@@ -23,13 +28,27 @@ struct eval {
     ARRAY(double) arg_back;  /* scratch: derivatives of arguments */
     ARRAY(double) work;      /* scratch: probabilities of a diagram's nodes */
     ARRAY(double) work_back; /* scratch: derivatives of them */
+    ARRAY(const struct course *) courses; /* scratch: of a diagram over windows */
+    ARRAY(struct course_values) course_values;
+    ARRAY(struct course_values) course_back; /* scratch: derivatives of them */
 };
 
 /* The arguments of node n as numbers, in v->args. */
 const double *eval_gather(struct eval *v, node_id n);
 
-/* Computes all roots of DIAGRAM node n into `results` (room for them is there);
- * leaves p in v->args, q in v->q and the nodes' probabilities in v->work. */
+/* Makes an array of n, not cleared, in place of what was there. */
+#define ROOM(v, arr, want) \
+    ((arr)->n = 0, array_reserve((v)->arena, (arr), (want)), (arr)->n = (want), (arr)->at)
+
+/* How many results a DIAGRAM has: roots, for each window. */
+size_t eval_results(const struct eval *v, node_id n);
+
+/* Computes all results of DIAGRAM node n into `results` (room for them is there);
+ * leaves p in v->args, q in v->q and, without windows, the nodes' probabilities in v->work. */
 void eval_diagram(struct eval *v, node_id n, double *results);
+
+/* What DIAGRAM node n averages over its windows, of which it has some; in v->args, v->q,
+ * v->courses and v->course_values. */
+struct averaged eval_averaged(struct eval *v, node_id n);
 
 #endif

@@ -48,9 +48,14 @@ static double series(double n, double log_rate)
     return log_rate == 0 ? n : math_expm1(-n * log_rate) / math_expm1(-log_rate);
 }
 
+double annuity_worth(double d, double middle, double log_rate)
+{
+    return d > 0 ? d * math_exp(-middle * log_rate) : 0;
+}
+
 static double worth(struct piece p, double log_rate)
 {
-    return p.d > 0 ? p.d * math_exp(-p.middle * log_rate) : 0;
+    return annuity_worth(p.d, p.middle, log_rate);
 }
 
 double annuity_point(size_t n, const double *x)

@@ -200,6 +200,7 @@ static uint32_t set_of_node(struct degrees *d, const struct graph *g, node_id n)
         return power_set(d, g, n);
     case DEGREE_CHOICE:
         return is_certain(d, g, n, 0) ? together(d, g, n, 1, false) : CURVED;
+    case DEGREE_COURSE:
     case DEGREE_CURVED:
     case DEGREE_MISSING:
         break;

@@ -2,6 +2,10 @@
 /* The graph's storage and its building: nodes and arguments in two growing arrays,
  * sections as ranges of nodes, one table to find equal nodes of the open section.
  *
+ * What does not fit into a node (the years of YEARS, the times of COURSE, the windows of a
+ * DIAGRAM) is a table beside them, of which equal ones are one, found by a list of numbers
+ * that says all about it.
+ *
  * Owns the arrays in the caller's arena; diagrams are borrowed. Invariants: an
  * argument has a smaller number than its node; nodes and arguments never change, so
  * a pointer that was handed out before the arrays grew still reads the same; the
@@ -27,20 +31,29 @@ struct slots {
     size_t cap, active;
 };
 
+/* `key`: its kind and everything in it. */
+struct table {
+    size_t n;
+    const double *key;
+    const void *is; /* struct years, course or windows */
+};
+
 struct graph {
     struct arena *arena;
     ARRAY(struct graph_node) nodes;
     ARRAY(node_id) args;
     ARRAY(struct dim) dims; /* distinct */
     ARRAY(const struct diagram *) diagrams; /* distinct */
+    ARRAY(struct table) tables;             /* distinct */
     ARRAY(struct section) sections;
     bool open;
     struct slots equal;    /* nodes of the open section */
     struct slots diagram;  /* all diagrams */
+    struct slots table;    /* all tables */
     struct degrees *degrees;
 };
 
-/* ---- tables ---- */
+/* ---- finding what is equal ---- */
 
 static void slots_clear(struct arena *a, struct slots *s, size_t active)
 {
@@ -78,8 +91,7 @@ static uint64_t bits(double x)
 static uint64_t node_hash(const struct graph_node *n, const node_id *args)
 {
     uint64_t h = mix(n->op | (uint64_t)n->dim << 16 | (uint64_t)n->n << 32, n->extra);
-    if (n->op == OP_CONST || n->op == OP_INPUT)
-        h = mix(h, bits(n->constant));
+    h = mix(h, n->table);
     for (uint32_t i = 0; i < n->n; i++)
         h = mix(h, args[i]);
     return h ^ h >> 29;
@@ -89,7 +101,7 @@ static bool node_equal(const struct graph *g, const struct graph_node *m,
                        const struct graph_node *n, const node_id *args)
 {
     return m->op == n->op && m->dim == n->dim && m->n == n->n && m->extra == n->extra &&
-           bits(m->constant) == bits(n->constant) &&
+           m->table == n->table &&
            (n->n == 0 || memcmp(g->args.at + m->first, args, n->n * sizeof *args) == 0);
 }
 
@@ -101,6 +113,7 @@ struct graph *graph_new(struct arena *a)
     g->arena = a;
     array_reserve(a, &g->args, 1); /* never NULL, so that offsets into it are defined */
     slots_clear(a, &g->diagram, FIRST_SLOTS);
+    slots_clear(a, &g->table, FIRST_SLOTS);
     return g;
 }
 
@@ -274,6 +287,46 @@ node_id graph_annuity(struct graph *g, node_id rate, node_id from, node_id to)
     return graph_op(g, OP_ANNUITY, 3, (node_id[]){rate, from, to});
 }
 
+/* ---- tables ---- */
+
+static uint64_t key_hash(size_t n, const double *key)
+{
+    uint64_t h = n;
+    for (size_t i = 0; i < n; i++)
+        h = mix(h, bits(key[i]));
+    return h ^ h >> 29;
+}
+
+static void grow_tables(struct graph *g)
+{
+    slots_clear(g->arena, &g->table, 2 * g->table.active);
+    for (size_t i = 0; i < g->tables.n; i++)
+        *slots_free(&g->table, key_hash(g->tables.at[i].n, g->tables.at[i].key)) = (uint32_t)i + 1;
+}
+
+/* The number, from 1, of the table with this key; a new one `is` nothing yet. Keeps the key. */
+static uint64_t table_number(struct graph *g, size_t n, const double *key)
+{
+    if (2 * (g->tables.n + 1) > g->table.active)
+        grow_tables(g);
+    size_t mask = g->table.active - 1, i = key_hash(n, key) & mask;
+    for (; g->table.at[i]; i = (i + 1) & mask) {
+        const struct table *t = &g->tables.at[g->table.at[i] - 1];
+        if (t->n == n && memcmp(t->key, key, n * sizeof *key) == 0)
+            return g->table.at[i];
+    }
+    *array_push(g->arena, &g->tables) = (struct table){.n = n, .key = key};
+    return g->table.at[i] = (uint32_t)g->tables.n;
+}
+
+static const void *table_of(const struct graph *g, node_id n, enum graph_op op)
+{
+    const struct graph_node *node = graph_at(g, n);
+    assert(node->op == op && node->table);
+    (void)op;
+    return g->tables.at[node->table - 1].is;
+}
+
 /* ---- diagrams ---- */
 
 static void grow_diagrams(struct graph *g)
@@ -305,12 +358,151 @@ node_id graph_diagram(struct graph *g, const struct diagram *d, size_t n, const 
                                          .n = (uint32_t)n, .extra = diagram_index(g, d)}, args);
 }
 
+/* Behind all beginnings, and no complement of what changes. */
+static bool windows_fit(const struct graph *g, size_t n, const node_id *args,
+                        const struct windows *w)
+{
+    for (size_t k = 0; k < w->n; k++)
+        for (size_t i = 0; i < n; i++) {
+            const struct graph_node *arg = graph_at(g, args[i]);
+            const struct course *c = arg->op == OP_COURSE ? graph_course_of(g, args[i]) : NULL;
+            if (c && (w->at[k].from < c->from || w->at[k].from < c->born))
+                return false;
+            if (arg->op == OP_COMPLEMENT && graph_at(g, *graph_args(g, args[i]))->op == OP_COURSE)
+                return false;
+        }
+    return true;
+}
+
+static uint64_t windows_table(struct graph *g, const struct windows *w)
+{
+    size_t n = 1 + 2 * w->n;
+    double *key = NEW_ARRAY(g->arena, n, double);
+    key[0] = OP_DIAGRAM;
+    for (size_t k = 0; k < w->n; k++) {
+        assert(w->at[k].from < w->at[k].to && isfinite(w->at[k].to - w->at[k].from));
+        key[1 + 2 * k] = w->at[k].from;
+        key[2 + 2 * k] = w->at[k].to;
+    }
+    uint64_t number = table_number(g, n, key);
+    struct table *t = &g->tables.at[number - 1];
+    if (!t->is) {
+        struct windows *kept = NEW(g->arena, struct windows);
+        *kept = (struct windows){w->n, arena_copy(g->arena, w->at, w->n * sizeof *w->at)};
+        t->is = kept;
+    }
+    return number;
+}
+
+node_id graph_diagram_over(struct graph *g, const struct diagram *d, size_t n, const node_id *args,
+                           const struct windows *w)
+{
+    if (!w || w->n == 0)
+        return graph_diagram(g, d, n, args);
+    assert(n >= d->n_variables);
+    struct dim dim = checked_dim(g, OP_DIAGRAM, n, args);
+    bool fits = windows_fit(g, n, args, w);
+    assert(fits);
+    (void)fits;
+    return intern(g, (struct graph_node){.op = OP_DIAGRAM, .dim = dim_index(g, dim),
+                                         .n = (uint32_t)n, .extra = diagram_index(g, d),
+                                         .table = windows_table(g, w)}, args);
+}
+
 node_id graph_pick(struct graph *g, node_id diagram, uint32_t root)
 {
+    return graph_pick_in(g, diagram, 0, root);
+}
+
+node_id graph_pick_in(struct graph *g, node_id diagram, uint32_t window, uint32_t root)
+{
     struct dim dim = checked_dim(g, OP_PICK, 1, &diagram);
-    assert(root < graph_diagram_of(g, diagram)->n_roots);
+    size_t n_roots = graph_diagram_of(g, diagram)->n_roots;
+    size_t n_windows = graph_windows_of(g, diagram).n;
+    assert(root < n_roots && window < (n_windows ? n_windows : 1));
+    assert((uint64_t)window * n_roots + root < UINT32_MAX);
+    (void)n_windows;
+    uint32_t place = (uint32_t)(window * n_roots + root);
     return intern(g, (struct graph_node){.op = OP_PICK, .dim = dim_index(g, dim), .n = 1,
-                                         .extra = root}, &diagram);
+                                         .extra = place}, &diagram);
+}
+
+/* ---- years and courses ---- */
+
+static bool years_fit(const struct years *y, size_t n)
+{
+    if (!(y->from <= y->to && fabs(y->from) <= 0x1p53 && fabs(y->to) <= 0x1p53))
+        return false;
+    double touched = y->from < y->to ? ceil(y->to) - floor(y->from) : 0;
+    for (size_t i = 0; i < y->n_years; i++)
+        if (y->of_year[i] >= n)
+            return false;
+    return (double)y->n_years == touched;
+}
+
+static uint64_t years_table(struct graph *g, const struct years *y)
+{
+    size_t n = 3 + y->n_years;
+    double *key = NEW_ARRAY(g->arena, n, double);
+    key[0] = OP_YEARS, key[1] = y->from, key[2] = y->to;
+    for (size_t i = 0; i < y->n_years; i++)
+        key[3 + i] = y->of_year[i];
+    uint64_t number = table_number(g, n, key);
+    struct table *t = &g->tables.at[number - 1];
+    if (!t->is) {
+        struct years *kept = NEW(g->arena, struct years);
+        *kept = *y;
+        kept->of_year = arena_copy(g->arena, y->of_year, y->n_years * sizeof *y->of_year);
+        t->is = kept;
+    }
+    return number;
+}
+
+node_id graph_years(struct graph *g, node_id rate, size_t n, const node_id *values,
+                    const struct years *y)
+{
+    bool fits = years_fit(y, n);
+    assert(fits);
+    (void)fits;
+    node_id *args = NEW_ARRAY(g->arena, n + 1, node_id);
+    args[0] = rate;
+    memcpy(args + 1, values, n * sizeof *values);
+    struct dim dim = checked_dim(g, OP_YEARS, n + 1, args);
+    return intern(g, (struct graph_node){.op = OP_YEARS, .dim = dim_index(g, dim),
+                                         .n = (uint32_t)n + 1, .table = years_table(g, y)}, args);
+}
+
+static bool course_fits(const struct course *c)
+{
+    bool is_reset = c->first < INFINITY;
+    return isfinite(c->from) && isfinite(c->born) && c->from <= c->first &&
+           (!is_reset || (c->every > 0 && isfinite(c->every)));
+}
+
+static uint64_t course_table(struct graph *g, const struct course *c)
+{
+    double every = c->first < INFINITY ? c->every : INFINITY;
+    double key[] = {OP_COURSE, c->from, c->first, every, c->born, c->fresh};
+    size_t n = sizeof key / sizeof *key;
+    uint64_t number = table_number(g, n, arena_copy(g->arena, key, sizeof key));
+    struct table *t = &g->tables.at[number - 1];
+    if (!t->is) {
+        struct course *kept = NEW(g->arena, struct course);
+        *kept = *c;
+        kept->every = every;
+        t->is = kept;
+    }
+    return number;
+}
+
+node_id graph_course(struct graph *g, const struct course *c, const node_id args[5])
+{
+    bool fits = course_fits(c);
+    assert(fits);
+    (void)fits;
+    struct dim dim = checked_dim(g, OP_COURSE, 5, args);
+    return intern(g, (struct graph_node){.op = OP_COURSE, .dim = dim_index(g, dim), .n = 5,
+                                         .table = course_table(g, c)}, args);
 }
 
 /* ---- reading ---- */
@@ -340,4 +532,29 @@ const struct diagram *graph_diagram_of(const struct graph *g, node_id n)
 {
     assert(graph_at(g, n)->op == OP_DIAGRAM);
     return g->diagrams.at[graph_at(g, n)->extra];
+}
+
+struct windows graph_windows_of(const struct graph *g, node_id diagram)
+{
+    if (graph_at(g, diagram)->table == 0)
+        return (struct windows){0, NULL};
+    return *(const struct windows *)table_of(g, diagram, OP_DIAGRAM);
+}
+
+void graph_pick_of(const struct graph *g, node_id pick, uint32_t *window, uint32_t *root)
+{
+    assert(graph_at(g, pick)->op == OP_PICK);
+    uint32_t n_roots = (uint32_t)graph_diagram_of(g, *graph_args(g, pick))->n_roots;
+    *window = graph_at(g, pick)->extra / n_roots;
+    *root = graph_at(g, pick)->extra % n_roots;
+}
+
+const struct years *graph_years_of(const struct graph *g, node_id n)
+{
+    return table_of(g, n, OP_YEARS);
+}
+
+const struct course *graph_course_of(const struct graph *g, node_id n)
+{
+    return table_of(g, n, OP_COURSE);
 }

@@ -66,10 +66,13 @@ struct graph_node {
     uint16_t dim;     /* index: graph_dim */
     uint32_t n;       /* arguments */
     uint32_t first;   /* index of the first argument: graph_args */
-    uint32_t extra;   /* INPUT: caller's number of the input; PICK: which result;
+    uint32_t extra;   /* INPUT: caller's number of the input; PICK: graph_pick_of;
                          DIAGRAM: index of the diagram: graph_diagram_of; others:
                          the number of graph_apart, or 0 */
-    double constant;  /* CONST: the value; INPUT: the mean */
+    union {
+        double constant; /* CONST: the value; INPUT: the mean */
+        uint64_t table;  /* YEARS, COURSE, DIAGRAM over windows: which table; others: 0 */
+    };
 };
 
 struct graph;
@@ -142,7 +145,8 @@ const struct years *graph_years_of(const struct graph *g, node_id n);
  *
  * args: standing, rate, ending, left, unreset; standing and left are numbers, the three rates
  * have one dimension, whose inverse is that of the times in `struct course`.
- * The value of the node itself is p(0). from <= first where it is finite; every > 0 then. */
+ * The value of the node itself is p(0), where from <= 0 and born <= 0. from <= first; every > 0
+ * where first is finite. */
 struct course {
     double from, first, every; /* first: INFINITY for none */
     double born;
@@ -168,7 +172,8 @@ node_id graph_pick(struct graph *g, node_id diagram, uint32_t root);
  * each root. The integrals are exact to 1e-11 relative (Gauss-Legendre between the resets of all
  * variables, of an order that the exponents and the least number of variables that make a root
  * true ask for). Windows lie behind `from` and `born` of every course. Windows are copied;
- * without them (NULL or n = 0) it is graph_diagram. graph_pick is of window 0. */
+ * without them (NULL or n = 0) it is graph_diagram. graph_pick is of window 0. A window with
+ * more than a million resets of one course has no finite value. */
 struct window {
     double from, to;
 };
@@ -199,13 +204,17 @@ struct graph_op_info {
 };
 const struct graph_op_info *graph_op_info(enum graph_op op);
 
-/* The point rule of an operation (not for CONST, INPUT, DIAGRAM, PICK), used by
- * src/eval and in tests; and its backward rule: adds
+/* The point rule of an operation (not for CONST, INPUT, DIAGRAM, PICK, nor for YEARS and COURSE,
+ * which need their tables); and its backward rule: adds
  * weight * d result / d args[i] to back[i]. At a tie of min or max the first arm
  * takes it all. */
 double graph_point(enum graph_op op, size_t n, const double *args);
 void graph_backward(enum graph_op op, size_t n, const double *args, double result, double weight,
                     double *back);
+/* The same for the operation of a node, with YEARS and COURSE: what src/eval asks for. */
+double graph_node_point(const struct graph *g, node_id n, const double *args);
+void graph_node_backward(const struct graph *g, node_id n, const double *args, double result,
+                         double weight, double *back);
 
 /* Copies `root` and what it needs into the open section of `to`, every macro
  * operation (ANNUITY, DIAGRAM, SUM, LOOKUP, COMPLEMENT ...) replaced by its

@@ -23,7 +23,7 @@ static node_id const_like(struct lowering *l, double value, node_id like)
 }
 
 /* The arguments of node n in `to`. */
-static node_id *mapped(struct lowering *l, node_id n)
+node_id *lowered_args(struct lowering *l, node_id n)
 {
     uint32_t count = graph_at(l->from, n)->n;
     const node_id *args = graph_args(l->from, n);
@@ -47,7 +47,7 @@ node_id lower_input(struct lowering *l, node_id n)
 node_id lower_keep(struct lowering *l, node_id n)
 {
     const struct graph_node *node = graph_at(l->from, n);
-    return graph_op(l->to, node->op, node->n, mapped(l, n));
+    return graph_op(l->to, node->op, node->n, lowered_args(l, n));
 }
 
 static node_id chain(struct lowering *l, enum graph_op op, size_t n, const node_id *args)
@@ -61,23 +61,46 @@ static node_id chain(struct lowering *l, enum graph_op op, size_t n, const node_
 node_id lower_chain(struct lowering *l, node_id n)
 {
     const struct graph_node *node = graph_at(l->from, n);
-    return chain(l, node->op, node->n, mapped(l, n));
+    return chain(l, node->op, node->n, lowered_args(l, n));
 }
 
 node_id lower_sum(struct lowering *l, node_id n)
 {
     const struct graph_node *node = graph_at(l->from, n);
-    return node->n ? chain(l, OP_ADD, node->n, mapped(l, n)) : const_like(l, 0, n);
+    return node->n ? chain(l, OP_ADD, node->n, lowered_args(l, n)) : const_like(l, 0, n);
 }
 
-static node_id one_minus(struct lowering *l, node_id x)
+node_id lowered_complement(struct lowering *l, node_id x)
 {
     return graph_op2(l->to, OP_SUBTRACT, graph_const(l->to, 1, number), x);
 }
 
+node_id lowered_number(struct lowering *l, double x)
+{
+    return graph_const(l->to, x, number);
+}
+
+node_id lowered_either(struct lowering *l, node_id x, node_id y)
+{
+    return graph_op2(l->to, OP_ADD, x,
+                     graph_op2(l->to, OP_MULTIPLY, lowered_complement(l, x), y));
+}
+
+/* The first that happens: x1, or x2 and not x1, or x3 and neither ... */
+node_id lower_either(struct lowering *l, node_id n)
+{
+    const node_id *args = lowered_args(l, n);
+    node_id total = args[0], none = lowered_complement(l, args[0]);
+    for (uint32_t i = 1; i < graph_at(l->from, n)->n; i++) {
+        total = graph_op2(l->to, OP_ADD, total, graph_op2(l->to, OP_MULTIPLY, none, args[i]));
+        none = graph_op2(l->to, OP_MULTIPLY, none, lowered_complement(l, args[i]));
+    }
+    return total;
+}
+
 node_id lower_complement(struct lowering *l, node_id n)
 {
-    return one_minus(l, *mapped(l, n));
+    return lowered_complement(l, *lowered_args(l, n));
 }
 
 /* 1 where x >= b, else 0, exactly: 1 + max(-s; min(0; x - b)) / s, where s is
@@ -97,7 +120,7 @@ static node_id reaches(struct lowering *l, node_id x, node_id b)
 node_id lower_lookup(struct lowering *l, node_id n)
 {
     size_t count = graph_at(l->from, n)->n;
-    const node_id *args = mapped(l, n);
+    const node_id *args = lowered_args(l, n);
     node_id here = graph_const(l->to, 1, number), total = NODE_NONE;
     for (size_t i = 1; i + 1 < count; i += 2) {
         node_id next = i + 3 < count ? reaches(l, args[0], args[i + 2])
@@ -120,7 +143,7 @@ static node_id one_year(struct lowering *l, node_id growth, double begin, double
 
 node_id lower_annuity(struct lowering *l, node_id n)
 {
-    const node_id *args = mapped(l, n);
+    const node_id *args = lowered_args(l, n);
     const struct graph_node *from = graph_at(l->to, args[1]), *to = graph_at(l->to, args[2]);
     if (from->op != OP_CONST || to->op != OP_CONST ||
         !(from->constant <= to->constant && to->constant - from->constant <= MOST_YEARS))
@@ -132,6 +155,21 @@ node_id lower_annuity(struct lowering *l, node_id n)
         double end = fmin(floor(begin) + 1, last);
         total = graph_op2(l->to, OP_ADD, total, one_year(l, growth, begin, end));
         begin = end;
+    }
+    return total;
+}
+
+node_id lower_years(struct lowering *l, node_id n)
+{
+    const node_id *args = lowered_args(l, n);
+    const struct years *y = graph_years_of(l->from, n);
+    node_id growth = graph_op2(l->to, OP_ADD, graph_const(l->to, 1, number), args[0]);
+    node_id total = const_like(l, 0, n);
+    for (size_t i = 0; i < y->n_years; i++) {
+        double middle, length = years_length(y, i, &middle);
+        node_id one = one_year(l, growth, middle - length / 2, middle + length / 2);
+        node_id part = graph_op2(l->to, OP_MULTIPLY, one, args[1 + y->of_year[i]]);
+        total = graph_op2(l->to, OP_ADD, total, part);
     }
     return total;
 }
@@ -153,25 +191,35 @@ static node_id *lower_diagram_nodes(struct lowering *l, const struct diagram *d,
     return values;
 }
 
+void lowered_roots(struct lowering *l, const struct diagram *d, const node_id *p, const node_id *q,
+                   node_id *roots)
+{
+    const node_id *values = lower_diagram_nodes(l, d, p, q);
+    for (size_t k = 0; k < d->n_roots; k++)
+        roots[k] = values[d->roots[k]];
+}
+
 node_id lower_diagram(struct lowering *l, node_id n)
 {
     const struct diagram *d = graph_diagram_of(l->from, n);
-    const node_id *args = graph_args(l->from, n), *p = mapped(l, n);
+    const node_id *args = graph_args(l->from, n), *p = lowered_args(l, n);
     node_id *q = NEW_ARRAY(l->scratch, graph_at(l->from, n)->n, node_id);
     for (uint32_t i = 0; i < graph_at(l->from, n)->n; i++)
         q[i] = graph_at(l->from, args[i])->op == OP_COMPLEMENT
                    ? l->map[graph_args(l->from, args[i])[0]]
-                   : one_minus(l, p[i]);
-    const node_id *values = lower_diagram_nodes(l, d, p, q);
+                   : lowered_complement(l, p[i]);
+    if (graph_windows_of(l->from, n).n)
+        return lowered_average(l, n, p, q);
     node_id place = (node_id)l->picks.n;
-    for (size_t k = 0; k < d->n_roots; k++)
-        *array_push(l->scratch, &l->picks) = values[d->roots[k]];
+    array_reserve(l->scratch, &l->picks, d->n_roots);
+    lowered_roots(l, d, p, q, l->picks.at + place);
+    l->picks.n += d->n_roots;
     return place;
 }
 
 node_id lower_pick(struct lowering *l, node_id n)
 {
-    return l->picks.at[*mapped(l, n) + graph_at(l->from, n)->extra];
+    return l->picks.at[*lowered_args(l, n) + graph_at(l->from, n)->extra];
 }
 
 /* Marks what root needs, root itself included. */

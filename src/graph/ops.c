@@ -8,6 +8,7 @@
  * is the first argument's. */
 #include "graph/ops.h"
 
+#include "graph/course.h"
 #include "math/elementary.h"
 
 #include <assert.h>
@@ -117,17 +118,21 @@ static void power_backward(size_t n, const double *x, double y, double w, double
         back[1] += w * y * math_log(x[0]);
 }
 
-/* ---- sum: compensated (Neumaier, ZAMM 54 (1974) 39), in the order of arguments ---- */
+/* ---- sum: compensated, in the order of arguments ---- */
+
+void compensated_add(struct compensated *c, double x)
+{
+    double t = c->sum + x;
+    c->lost += fabs(c->sum) >= fabs(x) ? (c->sum - t) + x : (x - t) + c->sum;
+    c->sum = t;
+}
 
 static double sum_point(size_t n, const double *x)
 {
-    double sum = 0, lost = 0;
-    for (size_t i = 0; i < n; i++) {
-        double t = sum + x[i];
-        lost += fabs(sum) >= fabs(x[i]) ? (sum - t) + x[i] : (x[i] - t) + sum;
-        sum = t;
-    }
-    return sum + lost;
+    struct compensated c = {0};
+    for (size_t i = 0; i < n; i++)
+        compensated_add(&c, x[i]);
+    return c.sum + c.lost;
 }
 
 static void sum_backward(size_t n, const double *x, double y, double w, double *back)
@@ -238,6 +243,32 @@ static void lookup_backward(size_t n, const double *x, double y, double w, doubl
     back[lookup_arm(n, x)] += w;
 }
 
+/* ---- either ---- */
+
+/* y + x - y x, as a sum of what is not negative. */
+static double either_point(size_t n, const double *x)
+{
+    double y = 0;
+    for (size_t i = 0; i < n; i++)
+        y += x[i] * (1 - y);
+    return y;
+}
+
+/* The product of 1 - x over the others; where one x is 1 only that one has a slope. */
+static void either_backward(size_t n, const double *x, double y, double w, double *back)
+{
+    (void)y;
+    double product = 1;
+    size_t sure = 0;
+    for (size_t i = 0; i < n; i++) {
+        sure += x[i] == 1;
+        product *= x[i] == 1 ? 1 : 1 - x[i];
+    }
+    for (size_t i = 0; i < n; i++)
+        if (sure == (x[i] == 1))
+            back[i] += w * (x[i] == 1 ? product : product / (1 - x[i]));
+}
+
 /* ---- unit rules ---- */
 
 static bool is_number(const struct graph *g, node_id n)
@@ -322,6 +353,23 @@ static bool unit_lookup(const struct graph *g, size_t n, const node_id *args, st
     return same_from(g, n - 2, args + 2, 2);
 }
 
+/* A rate, and values of one dimension. */
+static bool unit_years(const struct graph *g, size_t n, const node_id *args, struct dim *out)
+{
+    *out = graph_dim(g, args[1]);
+    return is_number(g, args[0]) && same_from(g, n - 1, args + 1, 1);
+}
+
+static bool unit_course(const struct graph *g, size_t n, const node_id *args, struct dim *out)
+{
+    (void)n;
+    *out = (struct dim){{0}};
+    struct dim rate = graph_dim(g, args[COURSE_RATE]);
+    return is_number(g, args[COURSE_STANDING]) && is_number(g, args[COURSE_LEFT]) &&
+           dim_equal(graph_dim(g, args[COURSE_ENDING]), rate) &&
+           dim_equal(graph_dim(g, args[COURSE_UNRESET]), rate);
+}
+
 static bool unit_pick(const struct graph *g, size_t n, const node_id *args, struct dim *out)
 {
     *out = (struct dim){{0}};
@@ -354,6 +402,9 @@ static const struct op_rule rules[OP_COUNT] = {
     ROW(SQRT,       sqrt_point,       sqrt_backward,     unit_root,     keep,       CURVED),
     ROW(LOOKUP,     lookup_point,     lookup_backward,   unit_lookup,   lookup,     CHOICE),
     ROW(ANNUITY,    annuity_point,    annuity_backward,  unit_number,   annuity,    CURVED),
+    ROW(EITHER,     either_point,     either_backward,   unit_number,   either,     PRODUCT),
+    ROW(YEARS,      NULL,             NULL,              unit_years,    years,      CHOICE),
+    ROW(COURSE,     NULL,             NULL,              unit_course,   course,     COURSE),
     ROW(DIAGRAM,    NULL,             NULL,              unit_number,   diagram,    PRODUCT),
     ROW(PICK,       NULL,             NULL,              unit_pick,     pick,       UNION),
 };
@@ -386,4 +437,26 @@ void graph_backward(enum graph_op op, size_t n, const double *args, double resul
 {
     assert(rules[op].backward);
     rules[op].backward(n, args, result, weight, back);
+}
+
+double graph_node_point(const struct graph *g, node_id n, const double *args)
+{
+    const struct graph_node *node = graph_at(g, n);
+    if (node->op == OP_YEARS)
+        return years_point(graph_years_of(g, n), args);
+    if (node->op == OP_COURSE)
+        return course_at(graph_course_of(g, n), args, 0);
+    return graph_point(node->op, node->n, args);
+}
+
+void graph_node_backward(const struct graph *g, node_id n, const double *args, double result,
+                         double weight, double *back)
+{
+    const struct graph_node *node = graph_at(g, n);
+    if (node->op == OP_YEARS)
+        years_backward(graph_years_of(g, n), args, weight, back);
+    else if (node->op == OP_COURSE)
+        course_backward(graph_course_of(g, n), args, weight, back);
+    else
+        graph_backward(node->op, node->n, args, result, weight, back);
 }

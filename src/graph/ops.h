@@ -8,7 +8,9 @@
  * Exceptions, and the only ones: CONST and INPUT are leaves, whose value and
  * dimension the caller gives; DIAGRAM and PICK have no point and backward rule on
  * plain numbers, since a DIAGRAM has many results: src/eval calls
- * diagram_evaluate and diagram_backward for them. */
+ * diagram_evaluate and diagram_backward, or average_values and average_slopes, for
+ * them; YEARS and COURSE need their tables: graph_node_point and
+ * graph_node_backward know their rules. */
 #ifndef GRAPH_OPS_H
 #define GRAPH_OPS_H
 
@@ -25,6 +27,7 @@ enum degree_rule {
     DEGREE_QUOTIENT, /* linear in the first, curved in the second */
     DEGREE_POWER,    /* exponent 1 keeps, another is curved */
     DEGREE_CHOICE,   /* curved in the first, linear in the others */
+    DEGREE_COURSE,   /* linear in the first and the fourth, curved in the others */
     DEGREE_CURVED    /* 2 when anything is uncertain */
 };
 
@@ -60,8 +63,39 @@ node_id lower_sum(struct lowering *l, node_id n);
 node_id lower_complement(struct lowering *l, node_id n);
 node_id lower_lookup(struct lowering *l, node_id n);
 node_id lower_annuity(struct lowering *l, node_id n);
+node_id lower_years(struct lowering *l, node_id n);
+node_id lower_either(struct lowering *l, node_id n);
+node_id lower_course(struct lowering *l, node_id n);
 node_id lower_diagram(struct lowering *l, node_id n);
 node_id lower_pick(struct lowering *l, node_id n);
+
+/* What the expansions share: the arguments of node n in `to`; a pure number; 1 - x; x + y for what
+ * excludes one another and for independent events (x first, or not x and then y). */
+node_id *lowered_args(struct lowering *l, node_id n);
+node_id lowered_number(struct lowering *l, double x);
+node_id lowered_complement(struct lowering *l, node_id x);
+node_id lowered_either(struct lowering *l, node_id x, node_id y);
+
+/* The roots of a diagram, as nodes of `to`, where variable i has probabilities p[i] of true and
+ * q[i] of false. */
+void lowered_roots(struct lowering *l, const struct diagram *d, const node_id *p, const node_id *q,
+                   node_id *roots);
+/* A DIAGRAM over windows (lower_average.c); q[i] counts for what does not change. */
+node_id lowered_average(struct lowering *l, node_id n, const node_id *p, const node_id *q);
+
+/* A sum that keeps what rounding takes (Neumaier, ZAMM 54 (1974) 39): sum + lost. */
+struct compensated {
+    double sum, lost;
+};
+void compensated_add(struct compensated *c, double x);
+
+/* 1 for d years around `middle`, at math_log1p(rate); 0 for d = 0. */
+double annuity_worth(double d, double middle, double log_rate);
+
+/* YEARS' rules (years.c), and the length and middle of part i. */
+double years_point(const struct years *y, const double *x);
+void years_backward(const struct years *y, const double *x, double w, double *back);
+double years_length(const struct years *y, size_t i, double *middle);
 
 /* ANNUITY's rules (annuity.c); arguments: rate, from, to. */
 double annuity_point(size_t n, const double *x);
