@@ -570,6 +570,16 @@ START_TEST(products_are_compared_exactly)
 }
 END_TEST
 
+/* (1 + 2^-5 + 2^-48)(1 + 2^-48) = 1 + 2^-5 + 2^-47 + 2^-53 + 2^-96: just above the middle
+ * of two doubles, so up; without the last term it would be down, to the even one. */
+START_TEST(products_are_rounded_once)
+{
+    const double p[] = {0.5 * (1 + 0x1p-5 + 0x1p-48), 0.5 * (1 + 0x1p-48)};
+    struct cuts got = find(diagram_and(b, variable(0), variable(1)), p, 1);
+    ck_assert(got.sets[0].product == 0.25 * (1 + 0x1p-5 + 0x1p-47 + 0x1p-52));
+}
+END_TEST
+
 /* 20 members of 1e-20: far below all doubles, and in order nevertheless. 16 members of
  * 2^-67 give 2^-1072, which is one. */
 START_TEST(products_below_all_doubles_keep_their_order)
@@ -727,6 +737,7 @@ static Suite *cuts_suite(void)
     tcase_add_test(t, sets_of_structures);
     tcase_add_test(t, sets_of_structures_with_negations);
     tcase_add_test(t, products_are_compared_exactly);
+    tcase_add_test(t, products_are_rounded_once);
     tcase_add_test(t, products_below_all_doubles_keep_their_order);
     tcase_add_test(t, a_lower_limit_gives_the_beginning);
     tcase_add_test(t, choices_are_counted);
