@@ -5,24 +5,13 @@
 #include <math.h>
 #include <stdlib.h>
 
-day weigh_start(const struct register_settings *s)
-{
-    return s->start != DAY_NONE ? s->start : date_of((int)s->prices, 1, 1);
-}
-
-double weigh_years(const struct register_settings *s, day d)
-{
-    day start = weigh_start(s);
-    int y0 = date_year(start), y1 = date_year(d);
-    int days = (d - date_of(y1, 1, 1)) - (start - date_of(y0, 1, 1));
-    return (double)(y1 - y0) + (double)days / 365;
-}
+#include "figure/horizon.h"
 
 struct service timeline_service(const struct figures *f, const char *id, double horizon)
 {
     const struct register_settings *s = f->base->settings;
     const struct option *o = model_get(f->base, KIND_OPTION, id);
-    double from = o->in_service == DAY_NONE ? 0 : weigh_years(s, o->in_service);
+    double from = o->in_service == DAY_NONE ? 0 : horizon_years(s, o->in_service);
     double to = o->life ? from + expr_constant(o->life->expr) : horizon;
     struct service r = {fmin(fmax(from, 0), horizon), fmin(fmax(to, 0), horizon)};
     return r;
@@ -74,6 +63,6 @@ ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double
 
 double timeline_year(const struct register_settings *s, day d)
 {
-    double year = date_year(d) - date_year(weigh_start(s));
-    return fmax(weigh_years(s, d) < year ? year - 1 : year, 0);
+    double year = date_year(d) - date_year(horizon_start(s));
+    return fmax(horizon_years(s, d) < year ? year - 1 : year, 0);
 }

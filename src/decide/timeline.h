@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Time of a decision: years from the start of the horizon, when options are in service, and
- * the stretches between. The conventions are those of weigh.h, which declares
- * weigh_start and weigh_years. Private to src/decide. */
+ * the stretches between. The conventions are those of weigh.h and figure/horizon.h. Private to
+ * src/decide. */
 #ifndef DECIDE_TIMELINE_H
 #define DECIDE_TIMELINE_H
 

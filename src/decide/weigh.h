@@ -70,12 +70,6 @@ ohmen_status weigh_compile(struct figures *f, const char *decision, struct weigh
  * figures_evaluate has been called. */
 void weigh_rank(struct figures *f, struct weighing *w);
 
-/* Years from the start of the horizon to a date (may be negative). */
-double weigh_years(const struct register_settings *s, day d);
-
-/* First day of the horizon. */
-day weigh_start(const struct register_settings *s);
-
 /* Finds any figure, those of decisions and options among them. */
 ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e);
 

@@ -120,7 +120,7 @@ struct group_building {
     const struct element_exports **members; /* by x->of */
     const struct element_exports *finder;   /* or NULL */
     const struct element *finder_data;
-    node_id beta, beta_detected;            /* NODE_NONE with alpha factors */
+    node_id beta, beta_detected; /* NODE_NONE with alpha factors */
 };
 
 /* The share of a set of k as a node. */
@@ -150,8 +150,8 @@ static node_id geometric_mean(struct building *b, size_t n, const node_id *x)
     node_id product = graph_op2(g, OP_DIVIDE, x[0], unit);
     for (size_t i = 1; i < n; i++)
         product = graph_op2(g, OP_MULTIPLY, product, graph_op2(g, OP_DIVIDE, x[i], unit));
-    node_id root = graph_op2(g, OP_POWER, product,
-                             compile_const(b, 1.0 / (double)n, dim_number, NULL));
+    node_id root =
+        graph_op2(g, OP_POWER, product, compile_const(b, 1.0 / (double)n, dim_number, NULL));
     return graph_op2(g, OP_MULTIPLY, root, unit);
 }
 
@@ -241,8 +241,11 @@ static bool compile_shock(struct group_building *g, size_t n, const size_t *set,
         members[i] = g->x->of.at[set[i]];
     const char *q = joined(f->arena, &g->x->of, n, set);
     *out = (struct shock){arena_printf(f->arena, "%s.%s", g->object->id, q), n, members, {0}};
-    struct making k = {.undetected = parts[UNDETECTED], .finds = NODE_NONE,
-                       .revealed = NODE_NONE, .left = NODE_NONE, .q1 = q,
+    struct making k = {.undetected = parts[UNDETECTED],
+                       .finds = NODE_NONE,
+                       .revealed = NODE_NONE,
+                       .left = NODE_NONE,
+                       .q1 = q,
                        .when = {.first = INFINITY, .fresh = true}};
     static const enum property names[] = {PROPERTY_ON_DEMAND, PROPERTY_UNDETECTED,
                                           PROPERTY_DETECTED};
@@ -299,9 +302,9 @@ static void find_finder(struct group_building *g)
     for (size_t i = 0; i < g->x->of.n; i++) {
         const struct element_exports *x = g->members[i];
         bool named = g->x->found_by && text_equal(g->x->found_by, g->x->of.at[i]);
-        bool sooner = !g->x->found_by &&
-                      (!g->finder || (x->tested && (!g->finder->tested ||
-                                                    x->every < g->finder->every)));
+        bool sooner =
+            !g->x->found_by &&
+            (!g->finder || (x->tested && (!g->finder->tested || x->every < g->finder->every)));
         if (named || sooner) {
             g->finder = x;
             g->finder_data = model_get(m, KIND_ELEMENT, g->x->of.at[i]);
@@ -319,11 +322,14 @@ static node_id stated_beta(struct building *b, const struct quantity *q, const c
     return n;
 }
 
-static void compile_group_unit(struct figures *f, const struct variant *v, const struct object *o)
+/* Its members have been compiled, as what it refers to. */
+ohmen_status compile_group(struct figures *f, const struct variant *v, const struct object *o,
+                           struct compiled **out, ohmen_error *e)
 {
     struct building b;
     struct group_exports *x = NEW(f->arena, struct group_exports);
     struct group_building g = {.b = &b, .object = o, .x = o->data};
+    (void)e;
     compiled_begin(f, v, o, o->id, &b);
     g.members = NEW_ARRAY(f->arena, g.x->of.n, const struct element_exports *);
     for (size_t i = 0; i < g.x->of.n; i++)
@@ -336,24 +342,8 @@ static void compile_group_unit(struct figures *f, const struct variant *v, const
     if (b.unit->n)
         b.unit->main = b.unit->first;
     compiled_end(&b);
-}
-
-ohmen_status compile_group(struct figures *f, const struct variant *v, const struct object *o,
-                           ohmen_error *e)
-{
-    const struct common_cause *x = o->data;
-    const struct compiled *unused;
-    const struct variant *projected;
-    ohmen_status status = variant_project(f, v, o->id, &projected, e);
-    struct building under = {.figures = f, .variant = projected};
-    if (status != OHMEN_OK || compiled_of(&under, o->id))
-        return status;
-    status = compile_references(f, projected, o, e);
-    for (size_t i = 0; status == OHMEN_OK && i < x->of.n; i++)
-        status = figures_compile(f, projected, x->of.at[i], &unused, e);
-    if (status == OHMEN_OK)
-        compile_group_unit(f, projected, o);
-    return status;
+    *out = b.unit;
+    return OHMEN_OK;
 }
 
 /* --- what remains of an element --- */
@@ -388,8 +378,8 @@ static node_id remaining(struct building *b, const struct groups *groups, const 
     node_id sum = less.n == 1 ? less.at[0] : graph_op(f->graph, OP_SUM, less.n, less.at);
     node_id rest = graph_op2(f->graph, OP_SUBTRACT, whole, sum);
     if (!alike)
-        rest = graph_op2(f->graph, OP_MAX,
-                         compile_const(b, 0, graph_dim(f->graph, whole), NULL), rest);
+        rest = graph_op2(f->graph, OP_MAX, compile_const(b, 0, graph_dim(f->graph, whole), NULL),
+                         rest);
     compiled_add(b, names[p], "alone", NULL, rest, NULL, NULL);
     return rest;
 }
@@ -403,8 +393,8 @@ static void compile_alone_unit(struct figures *f, const struct variant *v, const
     struct compiled *whole_unit = (struct compiled *)compiled_of(&b, o->id);
     const struct element_exports *whole = whole_unit->exports;
     *x = *whole;
-    struct making k = {.finds = whole->finds, .revealed = whole->revealed, .left = whole->left,
-                       .q1 = "alone"};
+    struct making k = {
+        .finds = whole->finds, .revealed = whole->revealed, .left = whole->left, .q1 = "alone"};
     node_id parts[PARTS];
     for (enum part p = 0; p < PARTS; p++) {
         node_id n = part_of(whole, p);
@@ -431,13 +421,14 @@ ohmen_status compile_alone(struct figures *f, const struct variant *v, const cha
 {
     const struct variant *projected;
     struct groups groups = {0};
+    const struct compiled *unused;
     ohmen_status status = variant_project(f, v, element, &projected, e);
     struct building under = {.figures = f, .variant = projected};
     if (status != OHMEN_OK || compiled_part(&under, element, PART_ALONE))
         return status;
     groups_of(f, projected->model, element, &groups);
     for (size_t i = 0; status == OHMEN_OK && i < groups.n; i++)
-        status = compile_group(f, projected, groups.at[i], e);
+        status = figures_compile(f, projected, groups.at[i]->id, &unused, e);
     if (status == OHMEN_OK && groups.n)
         compile_alone_unit(f, projected, model_find(projected->model, element), &groups);
     return status;

@@ -46,8 +46,12 @@ node_id compile_expr(struct building *b, const struct expr *e)
     switch (e->op) {
     case EXPR_LITERAL: return compile_const(b, e->value, e->dim, e->text);
     case EXPR_NAME:
+        return compile_has_year(b, e->name) ? compile_in_year(b, e->name)
+                                            : compiled_main_node(b, e->name);
     case EXPR_FAILS: return compiled_main_node(b, e->name);
-    case EXPR_FREQUENCY: return compile_frequency(b, e->name);
+    case EXPR_FREQUENCY:
+        return compile_has_year(b, e->name) ? compile_in_year(b, e->name)
+                                            : compile_frequency(b, e->name);
     case EXPR_CLEARANCE: return b->clearance;
     case EXPR_ADD: return compile_call(b, OP_ADD, e);
     case EXPR_SUBTRACT: return compile_call(b, OP_SUBTRACT, e);
@@ -207,10 +211,11 @@ static ohmen_status compile_frequency_of(struct figures *f, const struct variant
     return status;
 }
 
-/* Schemes export nothing to others: their elements do. */
+/* Schemes export nothing to others: their elements do. An element comes with its common causes,
+ * but not where one of these asks for it. */
 static ohmen_status compile_referred(struct figures *f, const struct variant *v,
-                                     const struct reference *r, const struct object *to,
-                                     ohmen_error *e)
+                                     const struct object *from, const struct reference *r,
+                                     const struct object *to, ohmen_error *e)
 {
     const struct compiled *unused;
     if (to->kind == KIND_SCHEME)
@@ -218,20 +223,20 @@ static ohmen_status compile_referred(struct figures *f, const struct variant *v,
     if (to->kind == KIND_HAZARD && r->frequency)
         return compile_frequency_of(f, v, to, e);
     ohmen_status status = figures_compile(f, v, to->id, &unused, e);
-    if (status == OHMEN_OK && to->kind == KIND_ELEMENT)
+    if (status == OHMEN_OK && to->kind == KIND_ELEMENT && from->kind != KIND_COMMON_CAUSE)
         status = compile_alone(f, v, to->id, e);
     return status;
 }
 
 static ohmen_status compile_one_reference(struct figures *f, const struct variant *v,
-                                          const struct reference *r, const struct object *to,
-                                          ohmen_error *e)
+                                          const struct object *from, const struct reference *r,
+                                          const struct object *to, ohmen_error *e)
 {
     if (f->depth >= COMPILE_DEPTH)
         return error_set(e, OHMEN_COMPUTE, "\"%s\" depends on others more than %d deep", to->id,
                          COMPILE_DEPTH);
     f->depth++;
-    ohmen_status status = compile_referred(f, v, r, to, e);
+    ohmen_status status = compile_referred(f, v, from, r, to, e);
     f->depth--;
     return status;
 }
@@ -249,7 +254,7 @@ ohmen_status compile_references_at(struct figures *f, const struct variant *v,
         if (r->trace || r->later || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
             to->kind == KIND_COMMON_CAUSE || (path && !text_equal(path, r->path)))
             continue;
-        ohmen_status status = compile_one_reference(f, v, r, to, e);
+        ohmen_status status = compile_one_reference(f, v, o, r, to, e);
         if (status != OHMEN_OK)
             return status;
     }
@@ -268,8 +273,6 @@ static ohmen_status compile_object(struct figures *f, const struct variant *v,
     ohmen_status status = compile_references(f, v, o, e);
     if (status == OHMEN_OK && o->kind == KIND_HAZARD)
         status = compile_frequency_of(f, v, o, e);
-    if (status == OHMEN_OK && o->kind == KIND_COMMON_CAUSE)
-        status = compile_group(f, v, o, e);
     if (status != OHMEN_OK)
         return status;
     switch (o->kind) {
@@ -279,11 +282,7 @@ static ohmen_status compile_object(struct figures *f, const struct variant *v,
     case KIND_ELEMENT: return compile_element(f, v, o, out, e);
     case KIND_SCHEME: return compile_scheme(f, v, o, out, e);
     case KIND_HAZARD: return compile_hazard(f, v, o, out, e);
-    case KIND_COMMON_CAUSE: {
-        struct building under = {.figures = f, .variant = v};
-        *out = (struct compiled *)compiled_of(&under, o->id);
-        return OHMEN_OK;
-    }
+    case KIND_COMMON_CAUSE: return compile_group(f, v, o, out, e);
     default:
         return error_set(e, OHMEN_COMPUTE, "\"%s\" is %s, which has no figures in this version",
                          o->id, kinds_words(f->arena, KIND_BIT(o->kind)));

@@ -10,7 +10,7 @@ struct building {
     struct figures *figures;
     const struct variant *variant; /* projected */
     struct compiled *unit;
-    node_id clearance; /* time of the row that is being compiled */
+    node_id clearance;         /* time of the row that is being compiled */
     const struct window *year; /* rates with a trend are taken in this year, counted from the
                                   start of the horizon; NULL: on the day of evaluation */
 };
@@ -57,6 +57,9 @@ struct frequency_exports {
     node_id mean;
     const node_id *yearly; /* by year of the horizon; NULL: no trend */
 };
+/* Is what a name stands for different in b->year? Its node then. */
+bool compile_has_year(const struct building *b, const char *id);
+node_id compile_in_year(struct building *b, const char *id);
 void compile_frequency_unit(struct figures *f, const struct variant *v, const struct object *o);
 
 /* Nodes. */
@@ -104,7 +107,7 @@ bool element_is_breaker(const struct model *m, const struct element *x);
 void element_instants(const struct figures *f, const struct element *x, struct making *m);
 /* A common cause and its members. */
 ohmen_status compile_group(struct figures *f, const struct variant *v, const struct object *o,
-                           ohmen_error *e);
+                           struct compiled **out, ohmen_error *e);
 struct behaviour compile_behaviour(struct building *b, const struct making *m, struct span *span);
 
 /* --- schemes as Boolean functions (structure.c) --- */

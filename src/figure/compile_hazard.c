@@ -6,6 +6,7 @@
  * its function sees the fault, and no earlier row has cleared. What schemes share is
  * exact, since all rows are functions of the same variables. */
 #include "figure/compile_hazard.h"
+#include "figure/span.h"
 
 #include <stdlib.h>
 
@@ -40,10 +41,12 @@ static size_t *rows_in_order(struct arena *a, const struct hazard *h)
 }
 
 static const struct condition *add_condition(struct tree *t, const struct condition *before,
-                                             const char *id, const char *sees_row, bool works)
+                                             struct condition like, bool works)
 {
     struct condition *c = NEW(t->arena, struct condition);
-    *c = (struct condition){before, id, sees_row, works};
+    *c = like;
+    c->before = before;
+    c->works = works;
     return c;
 }
 
@@ -115,10 +118,11 @@ static void grow_question(struct tree *t, const struct branch *b, const struct s
     bfun works = wiring_works(&t->wiring, b->if_works);
     struct spot yes = *at, no = *at;
     yes.reached = diagram_and(d, at->reached, works);
-    yes.condition = add_condition(t, at->condition, b->if_works, NULL, true);
+    struct condition asked = {.id = b->if_works};
+    yes.condition = add_condition(t, at->condition, asked, true);
     yes.path = arena_printf(t->arena, "%s/yes", at->path);
     no.reached = diagram_and(d, at->reached, diagram_not(d, works));
-    no.condition = add_condition(t, at->condition, b->if_works, NULL, false);
+    no.condition = add_condition(t, at->condition, asked, false);
     no.path = arena_printf(t->arena, "%s/no", at->path);
     grow(t, b->yes, yes);
     grow(t, b->no, no);
@@ -134,17 +138,52 @@ static void grow(struct tree *t, const struct branch *b, struct spot at)
         grow_split(t, &b->split, &at);
 }
 
-/* The row's scheme works and sees the fault. */
+/* --- rows --- */
+
+static const struct response_row *row_named(const struct hazard *h, const char *key)
+{
+    size_t i = 0;
+    while (!text_equal(h->response.keys[i], key))
+        i++;
+    return row_at(h, i);
+}
+
+/* The function of the row whose breaker is backed up has operated: what it needs but the
+ * breakers works, and it sees the fault. */
+static bfun has_tripped(struct tree *t, const struct response_row *row)
+{
+    const struct response_row *first = row_named(t->hazard, row->breaker_failure_of);
+    bfun trips = wiring_trips(&t->wiring, first->cleared_by);
+    if (!first->sees)
+        return trips;
+    return diagram_and(t->wiring.builder, trips, wiring_sees(&t->wiring, row->breaker_failure_of));
+}
+
+/* The row's scheme works and sees the fault; as breaker failure protection, it is also called. */
 static bfun row_clears(struct tree *t, const struct response_row *row, const char *key)
 {
     struct building *b = t->building;
     bfun works = wiring_works(&t->wiring, row->cleared_by);
+    if (row->breaker_failure_of)
+        works = diagram_and(t->wiring.builder, works, has_tripped(t, row));
     if (!row->sees)
         return works;
     node_id share = compile_quantity(b, row->sees->is);
     compiled_add(b, PROPERTY_SHARE, key, "sees", share, row->sees->source,
                  quantity_reads(b->figures, row->sees->is));
     return diagram_and(t->wiring.builder, works, wiring_sees(&t->wiring, key));
+}
+
+static struct condition row_condition(const struct tree *t, const struct response_row *row,
+                                      const char *key)
+{
+    struct condition c = {.id = row->cleared_by, .sees_row = row->sees ? key : NULL};
+    if (row->breaker_failure_of) {
+        const struct response_row *first = row_named(t->hazard, row->breaker_failure_of);
+        c.tripped_by = first->cleared_by;
+        c.tripped_row = first->sees ? row->breaker_failure_of : NULL;
+    }
+    return c;
 }
 
 static void grow_rows(struct tree *t)
@@ -164,12 +203,12 @@ static void grow_rows(struct tree *t)
                           .condition = before,
                           .reached = uncleared};
         if (row->cleared_by) {
-            const char *sees = row->sees ? key : NULL;
+            struct condition c = row_condition(t, row, key);
             bfun clears = row_clears(t, row, key);
             at.reached = diagram_and(d, uncleared, clears);
-            at.condition = add_condition(t, before, row->cleared_by, sees, true);
+            at.condition = add_condition(t, before, c, true);
             uncleared = diagram_and(d, uncleared, diagram_not(d, clears));
-            before = add_condition(t, before, row->cleared_by, sees, false);
+            before = add_condition(t, before, c, false);
         }
         grow(t, &row->then, at);
     }
@@ -217,27 +256,68 @@ static const struct diagram *freeze(struct tree *t)
     return diagram_freeze(t->arena, t->wiring.builder, n, roots);
 }
 
-static node_id add_diagram(struct tree *t, const struct diagram *d)
-{
-    size_t n = t->wiring.variables.n;
-    node_id *args = NEW_ARRAY(t->arena, n, node_id);
-    for (size_t i = 0; i < n; i++)
-        args[i] = wiring_argument(t->building, &t->wiring, i);
-    return graph_diagram(t->building->figures->graph, d, n, args);
-}
-
-static void add_ends(struct tree *t, struct hazard_exports *x, const struct diagram *d)
+/* Probabilities that the hazard itself puts elements out of action. */
+static void add_disabled(struct tree *t)
 {
     struct building *b = t->building;
-    struct graph *g = b->figures->graph;
-    node_id diagram = add_diagram(t, d);
+    const struct rows *disables = &t->hazard->disables;
+    for (size_t i = 0; i < disables->n; i++) {
+        const struct estimate *e = ROW(struct estimate, *disables, i);
+        compiled_add(b, PROPERTY_SHARE, disables->keys[i], "disabled", compile_quantity(b, e->is),
+                     e->source ? e->source : t->hazard->source, quantity_reads(b->figures, e->is));
+    }
+}
+
+static void add_diagram(struct tree *t, const struct diagram *d)
+{
+    struct hazard_exports *x = t->exports;
+    struct figures *f = t->building->figures;
+    node_id *args = wiring_arguments(t->building, &t->wiring);
+    x->n_events = t->wiring.events.n;
+    x->events = t->wiring.events.at;
+    x->diagram = d;
+    x->span = span_of(f, x->n_events, wiring_behaviours(t->arena, &t->wiring));
+    x->node = graph_diagram_over(f->graph, d, x->n_events, args, &x->span.windows);
+}
+
+/* The probability of an end in one window, or at all times. */
+static node_id end_in(struct tree *t, size_t end, uint32_t window)
+{
+    struct graph *g = t->building->figures->graph;
+    const struct tree_end *from = &t->ends.at[end];
+    node_id p = graph_pick_in(g, t->exports->node, window, from->root);
+    return from->spot.share == NODE_NONE ? p : graph_op2(g, OP_MULTIPLY, p, from->spot.share);
+}
+
+/* Ends in each year, as figures. */
+static void add_windows(struct tree *t)
+{
+    struct figures *f = t->building->figures;
+    const struct span *s = &t->exports->span;
+    size_t n = t->ends.n;
+    if (s->windows.n == 0)
+        return;
+    t->in_window = NEW_ARRAY(t->arena, s->windows.n * n, node_id);
+    for (uint32_t w = 0; w < s->windows.n; w++)
+        for (size_t e = 0; e < n; e++) {
+            node_id p = t->in_window[w * n + e] = end_in(t, e, w);
+            const char *label = span_label(f, s, w);
+            if (label)
+                compiled_add(t->building, PROPERTY_END, dotted(t->arena, t->ends.at[e].spot.path),
+                             label, p, NULL, NULL);
+        }
+}
+
+static void add_ends(struct tree *t)
+{
+    struct building *b = t->building;
+    struct hazard_exports *x = t->exports;
     x->n_ends = t->ends.n;
     x->ends = NEW_ARRAY(t->arena, x->n_ends, struct end);
+    add_windows(t);
     for (size_t i = 0; i < x->n_ends; i++) {
         struct tree_end *from = &t->ends.at[i];
-        node_id p = graph_pick(g, diagram, from->root);
-        if (from->spot.share != NODE_NONE)
-            p = graph_op2(g, OP_MULTIPLY, p, from->spot.share);
+        node_id p = t->in_window ? yearly_mean_end(t, i) : end_in(t, i, 0);
         x->ends[i] = (struct end){.condition = from->spot.condition,
                                   .path = from->spot.path,
                                   .row = from->spot.row,
@@ -248,13 +328,19 @@ static void add_ends(struct tree *t, struct hazard_exports *x, const struct diag
         x->ends[i].probability =
             compiled_add(b, PROPERTY_END, dotted(t->arena, from->spot.path), NULL, p, NULL, NULL);
     }
-    x->n_variables = t->wiring.variables.n;
-    x->variables = t->wiring.variables.at;
-    x->is_sees = t->wiring.is_sees.at;
-    x->diagram = d;
 }
 
 /* --- the hazard --- */
+
+static ohmen_status too_intertwined(struct building *b, const char *what, const char *id,
+                                    ohmen_error *e)
+{
+    compiled_give_up(b);
+    return error_set(e, OHMEN_COMPUTE,
+                     "%s \"%s\" is too intertwined: it needs more than %u diagram nodes, or nests "
+                     "too deep",
+                     what, id, DIAGRAM_NODES);
+}
 
 ohmen_status compile_hazard(struct figures *f, const struct variant *v, const struct object *o,
                             struct compiled **out, ohmen_error *e)
@@ -263,25 +349,21 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
     struct hazard_exports *x = NEW(f->arena, struct hazard_exports);
     compiled_begin(f, v, o, o->id, &b);
     b.unit->exports = x;
-    struct tree t = {.arena = f->arena, .building = &b, .hazard = o->data};
-    const struct quantity *q = t.hazard->frequency;
-    x->frequency = compiled_add(&b, PROPERTY_FREQUENCY, NULL, NULL, compile_quantity(&b, q),
-                                t.hazard->source, quantity_reads(f, q));
-    wiring_init(&t.wiring, f, v->model);
+    b.unit->also = compiled_part(&b, o->id, PART_FREQUENCY);
+    struct tree t = {.arena = f->arena, .building = &b, .hazard = o->data, .exports = x};
+    t.frequency = b.unit->also->exports;
+    x->frequency = b.unit->also->main;
+    wiring_init(&t.wiring, f, v, &t.hazard->disables);
+    add_disabled(&t);
     order_rows(&t);
     grow_rows(&t);
     const struct diagram *d = t.wiring.too_deep ? NULL : freeze(&t);
-    if (!d) {
-        compiled_give_up(&b);
-        return error_set(
-            e, OHMEN_COMPUTE,
-            "the response of \"%s\" is too intertwined: its schemes need more than %u diagram "
-            "nodes, or nest too deep",
-            o->id, DIAGRAM_NODES);
-    }
-    add_ends(&t, x, d);
-    t.exports = x;
+    if (!d)
+        return too_intertwined(&b, "the response of", o->id, e);
+    add_diagram(&t, d);
+    add_ends(&t);
     compile_outcomes(&t);
+    yearly_risks(&t);
     b.unit->main = x->risk;
     compiled_end(&b);
     *out = b.unit;
@@ -290,32 +372,41 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
 
 /* --- schemes by themselves --- */
 
+static void add_scheme(struct building *b, struct scheme_exports *x, struct wiring *w)
+{
+    struct figures *f = b->figures;
+    node_id *args = wiring_arguments(b, w);
+    x->n_events = w->events.n;
+    x->events = w->events.at;
+    x->span = span_of(f, x->n_events, wiring_behaviours(f->arena, w));
+    x->node = graph_diagram_over(f->graph, x->diagram, x->n_events, args, &x->span.windows);
+    node_id *values = NEW_ARRAY(f->arena, x->span.windows.n + 1, node_id);
+    values[0] = graph_pick(f->graph, x->node, 0);
+    for (uint32_t i = 0; i < x->span.windows.n; i++) {
+        const char *label = span_label(f, &x->span, i);
+        values[i] = graph_pick_in(f->graph, x->node, i, 0);
+        if (label)
+            compiled_add(b, PROPERTY_FAILS, label, NULL, values[i], NULL, NULL);
+    }
+    b->unit->main =
+        compiled_add(b, PROPERTY_FAILS, NULL, NULL, span_mean(b, &x->span, values), NULL, NULL);
+}
+
 ohmen_status compile_scheme(struct figures *f, const struct variant *v, const struct object *o,
                             struct compiled **out, ohmen_error *e)
 {
     struct building b;
     struct wiring w;
+    struct scheme_exports *x = NEW(f->arena, struct scheme_exports);
     compiled_begin(f, v, o, o->id, &b);
-    wiring_init(&w, f, v->model);
+    wiring_init(&w, f, v, NULL);
     wiring_order(&w, o->id);
     bfun fails = diagram_not(w.builder, wiring_works(&w, o->id));
-    const struct diagram *d = w.too_deep ? NULL : diagram_freeze(f->arena, w.builder, 1, &fails);
-    if (!d) {
-        compiled_give_up(&b);
-        return error_set(
-            e, OHMEN_COMPUTE,
-            "the scheme \"%s\" is too intertwined: it needs more than %u diagram nodes, or "
-            "nests too deep",
-            o->id, DIAGRAM_NODES);
-    }
-    node_id *args = NEW_ARRAY(f->arena, w.variables.n, node_id);
-    for (size_t i = 0; i < w.variables.n; i++)
-        args[i] = wiring_argument(&b, &w, i);
-    node_id n = graph_pick(f->graph, graph_diagram(f->graph, d, w.variables.n, args), 0);
-    struct scheme_exports *x = NEW(f->arena, struct scheme_exports);
-    *x = (struct scheme_exports){d, w.variables.n, w.variables.at};
+    x->diagram = w.too_deep ? NULL : diagram_freeze(f->arena, w.builder, 1, &fails);
+    if (!x->diagram)
+        return too_intertwined(&b, "the scheme", o->id, e);
     b.unit->exports = x;
-    b.unit->main = compiled_add(&b, PROPERTY_FAILS, NULL, NULL, n, NULL, NULL);
+    add_scheme(&b, x, &w);
     compiled_end(&b);
     *out = b.unit;
     return OHMEN_OK;

@@ -28,9 +28,15 @@ struct tree {
     struct wiring wiring;
     ARRAY(struct tree_end) ends;
     struct hazard_exports *exports;
+    const struct frequency_exports *frequency;
+    node_id *in_window; /* probability of end e in window w: [w * n_ends + e]; NULL: no windows */
 };
 
 /* Damage, frequency and risk of each outcome, and the hazard's own sums. */
 void compile_outcomes(struct tree *t);
+
+/* yearly.c: the probability of each end over the horizon, and risk year by year. */
+node_id yearly_mean_end(struct tree *t, size_t end);
+void yearly_risks(struct tree *t);
 
 #endif

@@ -15,8 +15,8 @@ struct element_building {
     struct building *b;
     const struct object *object;
     const struct element *x;
-    const struct element_type *t;   /* or NULL */
-    const struct compiled *type;    /* its unit, or NULL */
+    const struct element_type *t; /* or NULL */
+    const struct compiled *type;  /* its unit, or NULL */
     struct element_exports *out;
 };
 
@@ -117,8 +117,8 @@ static node_id share_in_test(const struct element_building *m)
         return NODE_NONE;
     node_id takes = compile_quantity(m->b, t->takes), every = compile_quantity(m->b, t->every);
     node_id n = graph_op2(m->b->figures->graph, OP_DIVIDE, takes, every);
-    compiled_add(m->b, PROPERTY_IN_TEST, NULL, NULL, n,
-                 first_source(t->source, m->x->source), NULL);
+    compiled_add(m->b, PROPERTY_IN_TEST, NULL, NULL, n, first_source(t->source, m->x->source),
+                 NULL);
     return n;
 }
 
@@ -149,8 +149,7 @@ static node_id revealed(const struct element_building *m)
     if (n == 0)
         return NODE_NONE;
     node_id sum = n == 1 ? parts[0] : graph_op(f->graph, OP_SUM, n, parts);
-    const char *reads =
-        n == 1 && m->x->exercised ? quantity_reads(f, m->x->exercised) : NULL;
+    const char *reads = n == 1 && m->x->exercised ? quantity_reads(f, m->x->exercised) : NULL;
     compiled_add(m->b, PROPERTY_REVEALED, NULL, NULL, sum, m->x->source, reads);
     return sum;
 }
@@ -227,17 +226,17 @@ static struct rates split_by_test(struct building *b, const struct making *m)
         return (struct rates){NODE_NONE, m->undetected};
     if (m->finds == NODE_NONE)
         return (struct rates){m->undetected, NODE_NONE};
-    struct rates r = {graph_op2(g, OP_MULTIPLY, m->undetected, m->finds),
-                      graph_op2(g, OP_MULTIPLY, m->undetected,
-                                graph_op1(g, OP_COMPLEMENT, m->finds))};
+    struct rates r = {
+        graph_op2(g, OP_MULTIPLY, m->undetected, m->finds),
+        graph_op2(g, OP_MULTIPLY, m->undetected, graph_op1(g, OP_COMPLEMENT, m->finds))};
     compiled_add(b, PROPERTY_TESTED, m->q1, m->q2, r.tested, NULL, NULL);
     compiled_add(b, PROPERTY_UNTESTED, m->q1, m->q2, r.untested, NULL, NULL);
     return r;
 }
 
 /* The behaviour as a COURSE; `standing` and the rates are there. */
-static void add_course(struct building *b, const struct making *m, node_id standing,
-                       struct rates r, struct behaviour *out)
+static void add_course(struct building *b, const struct making *m, node_id standing, struct rates r,
+                       struct behaviour *out)
 {
     struct figures *f = b->figures;
     node_id none = compile_const(b, 0, dim_number, NULL);
@@ -300,8 +299,8 @@ struct behaviour compile_behaviour(struct building *b, const struct making *m, s
     struct behaviour out = {.course = FIGURE_NONE};
     struct rates r = split_by_test(b, m);
     node_id standing = standing_of(b, m, &r);
-    bool timed = r.tested != NODE_NONE || r.untested != NODE_NONE ||
-                 (m->tested && m->left != NODE_NONE);
+    bool timed =
+        r.tested != NODE_NONE || r.untested != NODE_NONE || (m->tested && m->left != NODE_NONE);
     *span = (struct span){.years = horizon_length(b->figures->base->settings)};
     if (timed) {
         if (standing != NODE_NONE)
@@ -338,16 +337,15 @@ static void compile_parts(struct element_building *m)
     struct element_exports *x = m->out;
     const struct element *e = m->x;
     enum property p = has_time(m) ? PROPERTY_ON_DEMAND : PROPERTY_FAILS;
-    x->on_demand = own_or_type(stated_record(m->b, p, e->per_demand, e->source), m,
-                               PROPERTY_FAILS);
+    x->on_demand = own_or_type(stated_record(m->b, p, e->per_demand, e->source), m, PROPERTY_FAILS);
     x->undetected =
         own_or_type(stated_estimate(m->b, PROPERTY_UNDETECTED, e->undetected, e->source), m,
                     PROPERTY_UNDETECTED);
     x->detected = own_or_type(stated_estimate(m->b, PROPERTY_DETECTED, e->detected, e->source), m,
                               PROPERTY_DETECTED);
-    x->repair = own_or_type(
-        e->repair ? stated(m->b, PROPERTY_REPAIR, e->repair, e->source) : NODE_NONE, m,
-        PROPERTY_REPAIR);
+    x->repair =
+        own_or_type(e->repair ? stated(m->b, PROPERTY_REPAIR, e->repair, e->source) : NODE_NONE, m,
+                    PROPERTY_REPAIR);
     x->finds = x->left = NODE_NONE;
     if (e->test && e->test->finds)
         x->finds = stated(m->b, PROPERTY_FINDS, e->test->finds, e->test->source);
@@ -368,10 +366,8 @@ static struct making making_of(struct element_building *m)
 {
     struct element_exports *x = m->out;
     struct building *b = m->b;
-    struct making k = {.undetected = x->undetected,
-                       .finds = x->finds,
-                       .revealed = x->revealed,
-                       .left = x->left};
+    struct making k = {
+        .undetected = x->undetected, .finds = x->finds, .revealed = x->revealed, .left = x->left};
     node_id out = stated_estimate(b, PROPERTY_OUT, m->x->out_of_service, m->x->source);
     push(&k, x->on_demand);
     push(&k, share_in_repair(m));
@@ -383,10 +379,11 @@ static struct making making_of(struct element_building *m)
 
 static ohmen_status nothing_known(const struct object *o, ohmen_error *e)
 {
-    return error_set(e, OHMEN_COMPUTE,
-                     "nothing tells how the element \"%s\" fails: it has neither \"per-demand\" nor "
-                     "\"undetected\", \"detected\" or \"out-of-service\", nor has its type",
-                     o->id);
+    return error_set(
+        e, OHMEN_COMPUTE,
+        "nothing tells how the element \"%s\" fails: it has neither \"per-demand\" nor "
+        "\"undetected\", \"detected\" or \"out-of-service\", nor has its type",
+        o->id);
 }
 
 ohmen_status compile_element(struct figures *f, const struct variant *v, const struct object *o,

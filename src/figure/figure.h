@@ -45,7 +45,7 @@
       "mean damage of an outcome, of one item of it, or of a hazard's "                            \
       "damaging outcomes")                                                                         \
     X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
-    X(RISK, "risk", "frequency times damage, of an outcome or a hazard")            \
+    X(RISK, "risk", "frequency times damage, of an outcome or a hazard")                           \
     X(INVEST, "invest", "investment of an option")                                                 \
     X(RUNNING, "running", "running cost of an option per year")                                    \
     X(DISCOUNT, "discount", "interest per year")                                                   \
@@ -71,20 +71,20 @@ typedef uint32_t figure_id;
 
 /* How something fails: at all times alike, or over time. */
 struct behaviour {
-    node_id node;          /* argument of diagrams: a number, or a COURSE */
-    figure_id fails;       /* its mean over the horizon, or the long-run average */
-    figure_id course;      /* FIGURE_NONE unless timed */
-    bool timed;            /* it is a COURSE */
-    bool dated;            /* it has a date of its own, or a part that is never tested */
-    bool ages;             /* some part of it is never reset */
-    struct course when;    /* timed: years from the start of the horizon */
+    node_id node;       /* argument of diagrams: a number, or a COURSE */
+    figure_id fails;    /* its mean over the horizon, or the long-run average */
+    figure_id course;   /* FIGURE_NONE unless timed */
+    bool timed;         /* it is a COURSE */
+    bool dated;         /* it has a date of its own, or a part that is never tested */
+    bool ages;          /* some part of it is never reset */
+    struct course when; /* timed: years from the start of the horizon */
 };
 
 /* The time over which figures are averaged: see figure/span.h. */
 struct span {
-    struct windows windows; /* n = 0: nothing changes with time */
-    bool yearly;            /* windows are years of the horizon */
-    uint32_t years;         /* of the horizon */
+    struct windows windows;  /* n = 0: nothing changes with time */
+    bool yearly;             /* windows are years of the horizon */
+    uint32_t years;          /* of the horizon */
     const uint32_t *of_year; /* yearly: the window that holds in each */
 };
 

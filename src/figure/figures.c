@@ -129,8 +129,7 @@ const struct compiled *compiled_part(const struct building *b, const char *id, c
     const struct variant *projected;
     if (variant_project(b->figures, b->variant, id, &projected, NULL) != OHMEN_OK)
         return NULL;
-    return strmap_get(&b->figures->compiled_by_key,
-                      compiled_key(b->figures, id, part, projected));
+    return strmap_get(&b->figures->compiled_by_key, compiled_key(b->figures, id, part, projected));
 }
 
 node_id compiled_main_node(const struct building *b, const char *id)

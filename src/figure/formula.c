@@ -4,6 +4,7 @@
  * its own for it. */
 #include "figure/compile.h"
 
+#include <math.h>
 #include <string.h>
 
 #include "base/text.h"
@@ -81,21 +82,46 @@ static void write_input(struct writing *w, node_id n)
 
 /* --- ends of event trees and failures of schemes --- */
 
+static const struct hazard *hazard_of(const struct compiled *u)
+{
+    return u->object->kind == KIND_HAZARD ? u->object->data : NULL;
+}
+
+static void write_scheme(struct writing *w, const struct compiled *u, const char *id, bool bare,
+                         bool trips)
+{
+    struct wording words = {w->f, u->variant, hazard_of(u), trips};
+    wiring_text(w->out, &words, id, bare);
+}
+
+/* "(A.trips ... )": that the protection operates whose breaker is backed up. */
+static void write_called(struct writing *w, const struct compiled *u, const struct condition *c)
+{
+    if (!c->tripped_by)
+        return;
+    if (c->tripped_row)
+        text_printf(w->out, "sees.%s and ", c->tripped_row);
+    write_scheme(w, u, c->tripped_by, false, true);
+    text_add(w->out, " and ");
+}
+
 /* A scheme stands without parentheses only where it is the whole condition. */
-static void write_condition(struct text *t, const struct compiled *u, const struct condition *c,
+static void write_condition(struct writing *w, const struct compiled *u, const struct condition *c,
                             bool whole)
 {
     if (!c)
         return;
-    write_condition(t, u, c->before, false);
+    write_condition(w, u, c->before, false);
     if (c->before)
-        text_add(t, " and ");
-    text_add(t, c->works ? "" : "not ");
+        text_add(w->out, " and ");
+    text_add(w->out, c->works ? "" : "not ");
+    bool joined = c->sees_row || c->tripped_by;
+    text_add(w->out, joined ? "(" : "");
     if (c->sees_row)
-        text_printf(t, "(sees.%s and ", c->sees_row);
-    wiring_text(t, u->variant->model, c->id, whole && !c->before && c->works && !c->sees_row);
-    if (c->sees_row)
-        text_byte(t, ')');
+        text_printf(w->out, "sees.%s and ", c->sees_row);
+    write_called(w, u, c);
+    write_scheme(w, u, c->id, whole && !c->before && c->works && !joined, false);
+    text_add(w->out, joined ? ")" : "");
 }
 
 static bool is_of_name(char c)
@@ -107,54 +133,162 @@ static bool mentions(const char *text, const char *name)
 {
     size_t n = strlen(name);
     for (const char *p = strstr(text, name); p; p = strstr(p + 1, name))
-        if (!is_of_name(p[-1]) && !is_of_name(p[n]))
+        if (!is_of_name(p[-1]) && p[-1] != '.' && !is_of_name(p[n]) && p[n] != '.')
             return true;
     return false;
 }
 
 /* The probabilities behind the events that a condition names: those of the elements
  * themselves, even where they only repeat their type's. */
-static void meet_variables(struct writing *w, const struct compiled *u, const char *text)
+static void meet_events(struct writing *w, size_t n, const struct event *events, bool over,
+                        const char *text)
 {
-    const struct building under = {.figures = w->f, .variant = u->variant};
-    const struct hazard_exports *x = u->exports;
-    const struct scheme_exports *y = u->exports;
-    bool hazard = u->object->kind == KIND_HAZARD;
-    for (size_t i = 0; i < (hazard ? x->n_variables : y->n_variables); i++) {
-        const char *name = hazard ? x->variables[i] : y->variables[i];
-        if (!mentions(text, name))
-            continue;
-        bool sees = hazard && x->is_sees[i];
-        meet(w, sees ? compiled_figure(w->f, u, PROPERTY_SHARE, name, "sees")
-                     : compiled_of(&under, name)->main);
-    }
+    for (size_t i = 0; i < n; i++)
+        if (mentions(text, events[i].name))
+            meet(w, over && events[i].fails.timed ? events[i].fails.course : events[i].fails.fails);
 }
 
-/* "probability(...)" of the condition under which an end is reached. */
-static void write_pick(struct writing *w, node_id n)
+static const struct compiled *unit_of_node(const struct writing *w, node_id n)
 {
     uint32_t tag;
     node_id first;
     size_t count;
     graph_section(w->f->graph, graph_section_of(w->f->graph, n), &first, &count, &tag);
-    const struct compiled *u = w->f->units.at[tag];
-    uint32_t root = graph_at(w->f->graph, n)->extra;
-    size_t from = w->out->n;
+    return w->f->units.at[tag];
+}
+
+static void write_hazard_pick(struct writing *w, const struct compiled *u, uint32_t root, bool over)
+{
+    const struct hazard_exports *x = u->exports;
+    size_t i = 0, from = w->out->n;
+    while (x->ends[i].root != root)
+        i++;
     text_add(w->out, "probability(");
-    if (u->object->kind == KIND_SCHEME) {
-        text_add(w->out, "not ");
-        wiring_text(w->out, u->variant->model, u->id, false);
-    } else {
-        const struct hazard_exports *x = u->exports;
-        size_t i = 0;
-        while (x->ends[i].root != root)
-            i++;
-        if (!x->ends[i].condition)
-            text_add(w->out, "certain");
-        write_condition(w->out, u, x->ends[i].condition, true);
-    }
+    if (!x->ends[i].condition)
+        text_add(w->out, "certain");
+    write_condition(w, u, x->ends[i].condition, true);
     text_byte(w->out, ')');
-    meet_variables(w, u, text_str(w->out) + from);
+    meet_events(w, x->n_events, x->events, over, text_str(w->out) + from);
+}
+
+static void write_scheme_pick(struct writing *w, const struct compiled *u, bool over)
+{
+    const struct scheme_exports *x = u->exports;
+    size_t from = w->out->n;
+    text_add(w->out, "probability(not ");
+    write_scheme(w, u, u->id, false, false);
+    text_byte(w->out, ')');
+    meet_events(w, x->n_events, x->events, over, text_str(w->out) + from);
+}
+
+/* The average of one course: of an element or of a shock. */
+static void write_course_pick(struct writing *w, node_id diagram)
+{
+    node_id course = graph_args(w->f->graph, diagram)[0];
+    figure_id id = w->f->of_node.at[course];
+    meet(w, id);
+    text_add(w->out, figure_name(w->f, w->arena, id));
+}
+
+/* "probability(...)" of the condition under which an end is reached; "over(0 a; 1 a; ...)" its
+ * average over that time. */
+static void write_pick(struct writing *w, node_id n)
+{
+    const struct graph *g = w->f->graph;
+    node_id diagram = graph_args(g, n)[0];
+    struct windows windows = graph_windows_of(g, diagram);
+    const struct compiled *u = unit_of_node(w, n);
+    uint32_t window, root;
+    char from[32], to[32];
+    graph_pick_of(g, n, &window, &root);
+    if (windows.n)
+        text_printf(w->out, "over(%s a; %s a; ", text_double(from, windows.at[window].from),
+                    text_double(to, windows.at[window].to));
+    switch (u->object ? u->object->kind : KIND_COUNT) {
+    case KIND_HAZARD: write_hazard_pick(w, u, root, windows.n > 0); break;
+    case KIND_SCHEME: write_scheme_pick(w, u, windows.n > 0); break;
+    default: write_course_pick(w, diagram); break;
+    }
+    text_add(w->out, windows.n ? ")" : "");
+}
+
+/* --- over the years --- */
+
+/* "course(standing; rate; ending; left; unreset; from 2 a; first 3 a; every 4 a; born 2 a)", and
+ * "fresh" behind it. */
+static void write_course(struct writing *w, node_id n)
+{
+    const struct course *c = graph_course_of(w->f->graph, n);
+    char from[32], first[32], every[32], born[32];
+    text_add(w->out, "course(");
+    for (int i = 0; i < 5; i++) {
+        write_node(w, graph_args(w->f->graph, n)[i], WEAKEST);
+        text_add(w->out, "; ");
+    }
+    text_printf(w->out, "from %s a", text_double(from, c->from));
+    if (isfinite(c->first))
+        text_printf(w->out, "; first %s a; every %s a", text_double(first, c->first),
+                    text_double(every, c->every));
+    text_printf(w->out, "; born %s a%s)", text_double(born, c->born), c->fresh ? "; fresh" : "");
+}
+
+/* How many years in a row hold the same value. */
+static uint32_t alike(const struct years *y, uint32_t i)
+{
+    uint32_t n = 1;
+    while (i + n < y->n_years && y->of_year[i + n] == y->of_year[i])
+        n++;
+    return n;
+}
+
+/* Without interest, "7 * A + 6 * B", each value once; with it, a sum of annuities. */
+static void write_plain_years(struct writing *w, node_id n, const struct years *y)
+{
+    const node_id *args = graph_args(w->f->graph, n);
+    char number[32];
+    bool any = false;
+    for (uint32_t v = 0; v + 1 < graph_at(w->f->graph, n)->n; v++) {
+        double length = 0;
+        for (uint32_t i = 0; i < y->n_years; i++)
+            if (y->of_year[i] == v)
+                length += fmin(floor(y->from) + i + 1, y->to) - fmax(floor(y->from) + i, y->from);
+        if (length == 0)
+            continue;
+        text_add(w->out, any ? " + " : "");
+        any = true;
+        if (length != 1)
+            text_printf(w->out, "%s * ", text_double(number, length));
+        write_node(w, args[v + 1], 3);
+    }
+}
+
+static void write_discounted_years(struct writing *w, node_id n, const struct years *y)
+{
+    const node_id *args = graph_args(w->f->graph, n);
+    char from[32], to[32];
+    for (uint32_t i = 0, run; i < y->n_years; i += run) {
+        run = alike(y, i);
+        text_add(w->out, i ? " + annuity(" : "annuity(");
+        write_node(w, args[0], WEAKEST);
+        text_printf(w->out, "; %s; %s) * ", text_double(from, fmax(floor(y->from) + i, y->from)),
+                    text_double(to, fmin(floor(y->from) + i + run, y->to)));
+        write_node(w, args[y->of_year[i] + 1], 3);
+    }
+}
+
+static void write_years(struct writing *w, node_id n, unsigned around)
+{
+    const struct years *y = graph_years_of(w->f->graph, n);
+    const struct graph_node *rate = graph_at(w->f->graph, graph_args(w->f->graph, n)[0]);
+    bool wrap = around > 1;
+    text_add(w->out, wrap ? "(" : "");
+    if (y->n_years == 0)
+        text_byte(w->out, '0');
+    else if (rate->op == OP_CONST && rate->constant == 0)
+        write_plain_years(w, n, y);
+    else
+        write_discounted_years(w, n, y);
+    text_add(w->out, wrap ? ")" : "");
 }
 
 /* --- operations --- */
@@ -228,6 +362,8 @@ static void write_node(struct writing *w, node_id n, unsigned around)
     case OP_INPUT: write_input(w, n); break;
     case OP_PICK: write_pick(w, n); break;
     case OP_LOOKUP: write_lookup(w, n); break;
+    case OP_COURSE: write_course(w, n); break;
+    case OP_YEARS: write_years(w, n, around); break;
     default: write_operation(w, n, around); break;
     }
 }

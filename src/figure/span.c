@@ -28,8 +28,8 @@ static uint64_t greatest_divisor(uint64_t a, uint64_t b)
 static uint64_t whole_minutes(double every)
 {
     double minutes = round(every * MINUTES);
-    bool whole = minutes >= 1 && minutes <= SPAN_CYCLE * MINUTES &&
-                 fabs(minutes - every * MINUTES) <= 1e-6;
+    bool whole =
+        minutes >= 1 && minutes <= SPAN_CYCLE * MINUTES && fabs(minutes - every * MINUTES) <= 1e-6;
     return whole ? (uint64_t)minutes : 0;
 }
 

@@ -15,7 +15,7 @@
 
 #include "figure/compile.h"
 
-#define SPAN_CYCLE 400 /* years */
+#define SPAN_CYCLE 400  /* years */
 #define SPAN_TESTS 4096 /* of one thing in a cycle */
 
 /* The windows of things that fail together. Lives in the arena of f. */

@@ -165,8 +165,7 @@ static bfun function_of(struct wiring *w, const char *id, bool trips)
     const struct object *o = model_find(model_of(w), id);
     struct strmap *known = trips ? &w->trips : &w->works;
     if (o->kind == KIND_ELEMENT)
-        return trips && element_is_breaker(model_of(w), o->data) ? BFUN_TRUE
-                                                                 : element_works(w, id);
+        return trips && element_is_breaker(model_of(w), o->data) ? BFUN_TRUE : element_works(w, id);
     uintptr_t found = (uintptr_t)strmap_get(known, id);
     if (found)
         return (bfun)(found - 1);
@@ -203,9 +202,8 @@ node_id *wiring_arguments(struct building *b, struct wiring *w)
         if (sees || e->kind == EVENT_DISABLED) {
             figure_id id = compiled_figure(b->figures, b->unit, PROPERTY_SHARE, e->id,
                                            sees ? "sees" : "disabled");
-            e->fails = (struct behaviour){.node = figure_at(b->figures, id)->node,
-                                          .fails = id,
-                                          .course = FIGURE_NONE};
+            e->fails = (struct behaviour){
+                .node = figure_at(b->figures, id)->node, .fails = id, .course = FIGURE_NONE};
         }
         args[i] = e->fails.node;
     }

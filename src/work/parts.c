@@ -6,6 +6,7 @@
 #include "base/date.h"
 #include "base/utf8.h"
 #include "doc/json.h"
+#include "figure/horizon.h"
 #include "work/work.h"
 
 const char *object_name(const struct object *o)
@@ -80,7 +81,7 @@ void part_title_block(struct job *j, ohmen_error *e)
                       (long long)s->prices, reads(j, s->discount)));
     pair(j, b, "Horizon",
          arena_printf(j->arena, "%s from %s", reads(j, s->horizon),
-                      date_write(date, weigh_start(s))));
+                      date_write(date, horizon_start(s))));
     if (j->query.site)
         pair(j, b, "Only site", j->query.site);
 }
