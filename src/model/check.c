@@ -70,7 +70,8 @@ void check_references(struct checking *c, const struct object *o)
 /* Kinds whose references must not lead back to where they began. */
 static bool is_ordered(enum kind k)
 {
-    return k == KIND_VALUE || k == KIND_SCHEME || k == KIND_HAZARD || k == KIND_SITE;
+    return k == KIND_VALUE || k == KIND_RATE || k == KIND_SCHEME || k == KIND_HAZARD ||
+           k == KIND_SITE;
 }
 
 struct cycle_walk {

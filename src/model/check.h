@@ -25,7 +25,7 @@ void check_object(struct checking *c, const struct object *o);
 /* References exist and are of the right kind. */
 void check_references(struct checking *c, const struct object *o);
 
-/* No value, scheme, hazard or site is defined by itself; all objects of the model at
+/* No value, rate, scheme, hazard or site is defined by itself; all objects of the model at
  * once (of a variant: those that it changed). */
 void check_cycles(struct checking *c);
 
