@@ -139,9 +139,10 @@ CREATE TABLE "rate"( -- Occurrences per exposure and time (IEC 60050-192)
     "prior_solution" TEXT, -- Which shape, where a mean and a percentile have two
     "prior_source" TEXT, -- Where the number comes from
     "events" INTEGER, -- Local events counted over the exposure
-    "growth" TEXT, -- Growth per year
-    "since" TEXT, -- Begin of the ageing
-    "ageing" TEXT, -- Exponent of the power law of ageing
+    "growth" TEXT, -- Growth of the rate per year, such as 2 % per a
+    "since" TEXT, -- Day from which the age counts
+    "ageing" TEXT, -- Exponent of the power law of ageing; above 1 the rate rises with age
+    "kinds_prior" TEXT, -- Prior of the shares: 1 or 1/2 for each kind; uniform where it is left out
     "source" TEXT, -- Where the number comes from
     "note" TEXT, -- Anything else
     PRIMARY KEY("id")
@@ -158,12 +159,12 @@ CREATE TABLE "exposure"( -- A dated stretch
     PRIMARY KEY("rate", "path")
 ) STRICT, WITHOUT ROWID;
 
-CREATE TABLE "rate_kinds"( -- Events
+CREATE TABLE "rate_kinds"( -- Faults
     "rate" TEXT NOT NULL, -- Id of the object
     "path" TEXT NOT NULL, -- Where in the object it stands
     "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
     "key" TEXT NOT NULL, -- Name of the row
-    "value" INTEGER, -- Events
+    "value" INTEGER, -- Faults
     PRIMARY KEY("rate", "path")
 ) STRICT, WITHOUT ROWID;
 

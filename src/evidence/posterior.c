@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Posteriors of rates and of probabilities on demand, as quantities with a text. Owns
- * nothing. Invariant: the text says all that the distribution was made of, with every
+/* Posteriors of rates, of shares and of probabilities on demand, as quantities with a text.
+ * Owns nothing. Invariant: the text says all that the distribution was made of, with every
  * digit, so that a reader can compute it again. */
 #include "evidence/posterior.h"
 
@@ -18,6 +18,11 @@ static double stretch_days(const struct exposure *x, day date)
     return (double)last - (double)x->from + 1;
 }
 
+static double years_from(day d, day date)
+{
+    return ((double)d - (double)date) / DAYS_PER_YEAR;
+}
+
 static ohmen_status refuse_stretch(const char *id, const char *key, const char *what, day d,
                                    day date, ohmen_error *e)
 {
@@ -27,19 +32,51 @@ static ohmen_status refuse_stretch(const char *id, const char *key, const char *
                      what, date_write(then, d), date_write(now, date));
 }
 
-ohmen_status posterior_exposure(const struct rate *r, const char *id, day date, double *out,
-                                ohmen_error *e)
+static ohmen_status refuse_youth(const char *id, const char *key, day from, ohmen_error *e)
+{
+    char then[DATE_TEXT];
+    return error_set(e, OHMEN_COMPUTE,
+                     "rates/%s/exposure/%s begins on %s, before what ages was there", id, key,
+                     date_write(then, from));
+}
+
+static ohmen_status check_stretch(const struct exposure *x, const char *id, const char *key,
+                                  day date, const struct trend *trend, ohmen_error *e)
+{
+    if (x->from > date)
+        return refuse_stretch(id, key, "begins", x->from, date, e);
+    if (x->to != DAY_NONE && x->to > date)
+        return refuse_stretch(id, key, "ends", x->to, date, e);
+    if (trend_is_before(trend, years_from(x->from, date)))
+        return refuse_youth(id, key, x->from, e);
+    return OHMEN_OK;
+}
+
+/* The mean of lambda(t)/lambda(0) over a stretch. */
+static double stretch_weight(const struct exposure *x, day date, const struct trend *trend)
+{
+    double begin = years_from(x->from, date);
+    double end = ((double)x->from - (double)date + stretch_days(x, date)) / DAYS_PER_YEAR;
+    return trend_mean(trend, begin, end);
+}
+
+ohmen_status posterior_exposure(const struct rate *r, const char *id, day date,
+                                const struct trend *trend, double *out, ohmen_error *e)
 {
     double sum = 0;
     for (size_t i = 0; i < r->exposure.n; i++) {
         const struct exposure *x = ROW(struct exposure, r->exposure, i);
-        const char *key = r->exposure.keys[i];
-        if (x->from > date)
-            return refuse_stretch(id, key, "begins", x->from, date, e);
-        if (x->to != DAY_NONE && x->to > date)
-            return refuse_stretch(id, key, "ends", x->to, date, e);
-        sum += expr_constant(x->amount->expr) * (stretch_days(x, date) / DAYS_PER_YEAR);
+        ohmen_status status = check_stretch(x, id, r->exposure.keys[i], date, trend, e);
+        if (status != OHMEN_OK)
+            return status;
+        sum += expr_constant(x->amount->expr) * (stretch_days(x, date) / DAYS_PER_YEAR) *
+               stretch_weight(x, date, trend);
     }
+    if (!trend_is_flat(trend) && !(sum > 0 && isfinite(sum)))
+        return error_set(e, OHMEN_COMPUTE,
+                         "rates/%s: growth and ageing make its exposure %s: look at \"growth\", "
+                         "\"ageing\" and the days of the stretches",
+                         id, sum > 0 ? "too large for a number" : "nothing");
     *out = sum;
     return OHMEN_OK;
 }
@@ -83,16 +120,48 @@ static void add_prior(struct text *t, const struct prior *p, enum prior_family f
         text_printf(t, ", %s solution", prior_solutions[p->solution]);
 }
 
-/* "; 3 events in 8 section for 4483 d and 2 section for 90 d" */
-static void add_events(struct text *t, const struct rate *r, day date)
+/* ", weighted by growth 2 % per a and ageing 1.8 since 2001-05-01 for 2026-12-01" */
+static void add_trend(struct text *t, const struct rate *r, const struct trend *trend, day date)
 {
+    char then[DATE_TEXT];
+    bool grows = trend->growth != 0, ages = trend->ages && trend->exponent != 1;
+    text_add(t, ", weighted by ");
+    if (grows) {
+        text_add(t, "growth ");
+        expr_write(t, r->growth->expr);
+    }
+    text_add(t, grows && ages ? " and " : "");
+    if (ages) {
+        text_add(t, "ageing ");
+        expr_write(t, r->ageing->expr);
+        text_printf(t, " since %s", date_write(then, r->since));
+    }
+    text_printf(t, " for %s", date_write(then, date));
+}
+
+/* "8 section for 4483 d"; where it matters when, "8 section for 4483 d from 2014-08-25" */
+static void add_stretch(struct text *t, const struct exposure *x, day date, bool when)
+{
+    char then[DATE_TEXT];
+    expr_write(t, x->amount->expr);
+    text_printf(t, " for %lld d", (long long)stretch_days(x, date));
+    if (when)
+        text_printf(t, " from %s", date_write(then, x->from));
+}
+
+/* "; 3 events in 8 section for 4483 d and 2 section for 90 d". `as`: the rate whose trend it
+ * is. */
+static void add_events(struct text *t, const struct rate *r, const struct rate *as,
+                       const struct trend *trend, day date)
+{
+    bool flat = trend_is_flat(trend);
     text_printf(t, "; %lld event%s in ", (long long)r->events, r->events == 1 ? "" : "s");
     for (size_t i = 0; i < r->exposure.n; i++) {
-        const struct exposure *x = ROW(struct exposure, r->exposure, i);
         text_add(t, i ? " and " : "");
-        expr_write(t, x->amount->expr);
-        text_printf(t, " for %lld d", (long long)stretch_days(x, date));
+        add_stretch(t, ROW(struct exposure, r->exposure, i), date, !flat);
     }
+    if (!flat)
+        add_trend(t, as, trend, date);
 }
 
 /* --- rates --- */
@@ -140,10 +209,28 @@ static struct dim rate_dim(const struct rate *r)
     return dim_divide(dim_divide(dim_number, x->amount->dim), dim_time);
 }
 
-ohmen_status posterior_rate(struct arena *a, const struct rate *r, const char *id, day date,
-                            const struct quantity **out, ohmen_error *e)
+/* The prior with the events under a trend; flat where none were counted. */
+static const struct quantity *learn(struct arena *a, const struct rate *r, const struct rate *as,
+                                    const struct prior_distribution *d, const struct trend *trend,
+                                    double exposure, day date)
+{
+    struct quantity *q = NEW(a, struct quantity);
+    struct text t;
+    text_init(&t, a);
+    add_prior(&t, r->prior, d->family);
+    if (r->events >= 0)
+        add_events(&t, r, as, trend, date);
+    *q = (struct quantity){.times = 1, .dim = rate_dim(r), .text = text_str(&t)};
+    set_learnt(q, d, r->events > 0 ? (double)r->events : 0, exposure);
+    return q;
+}
+
+ohmen_status posterior_rate_trended(struct arena *a, const struct rate *r, const struct rate *as,
+                                    const char *id, day date, const struct quantity **out,
+                                    ohmen_error *e)
 {
     struct prior_distribution d;
+    struct trend trend = {0};
     const char *key;
     double exposure = 0;
     if (r->is) {
@@ -157,19 +244,43 @@ ohmen_status posterior_rate(struct arena *a, const struct rate *r, const char *i
         *out = r->prior->mean;
         return OHMEN_OK;
     }
-    ohmen_status status = posterior_exposure(r, id, date, &exposure, e);
-    if (status != OHMEN_OK)
-        return status;
-    struct quantity *q = NEW(a, struct quantity);
-    struct text t;
-    text_init(&t, a);
-    add_prior(&t, r->prior, d.family);
-    if (r->events >= 0)
-        add_events(&t, r, date);
-    *q = (struct quantity){.times = 1, .dim = rate_dim(r), .text = text_str(&t)};
-    set_learnt(q, &d, r->events > 0 ? (double)r->events : 0, exposure);
-    *out = q;
+    if (r->events >= 0) {
+        ohmen_status status = trend_of(as, id, date, &trend, e);
+        if (status == OHMEN_OK)
+            status = posterior_exposure(r, id, date, &trend, &exposure, e);
+        if (status != OHMEN_OK)
+            return status;
+    }
+    *out = learn(a, r, as, &d, &trend, exposure, date);
     return OHMEN_OK;
+}
+
+ohmen_status posterior_rate(struct arena *a, const struct rate *r, const char *id, day date,
+                            const struct quantity **out, ohmen_error *e)
+{
+    return posterior_rate_trended(a, r, r, id, date, out, e);
+}
+
+/* --- shares --- */
+
+const struct quantity *posterior_share(struct arena *a, const struct rate *r, size_t kind)
+{
+    const int64_t *counts = r->kinds_of_fault.at;
+    size_t n = r->kinds_of_fault.n;
+    int form = r->kinds_prior < 0 ? SHARE_PRIOR_UNIFORM : r->kinds_prior;
+    double each = form == SHARE_PRIOR_UNIFORM ? 1 : 0.5, others = 0;
+    int64_t all = counts[kind];
+    for (size_t i = 0; i < n; i++) {
+        all += i == kind ? 0 : counts[i];
+        others += i == kind ? 0 : each + (double)counts[i];
+    }
+    struct quantity *q = NEW(a, struct quantity);
+    *q = (struct quantity){
+        .shape = SHAPE_BETA, .p = {each + (double)counts[kind], others}, .times = 1};
+    q->text =
+        arena_printf(a, "%s prior over %zu kinds with %lld of %lld fault%s", share_priors[form], n,
+                     (long long)counts[kind], (long long)all, all == 1 ? "" : "s");
+    return q;
 }
 
 /* --- probabilities on demand --- */
@@ -184,9 +295,9 @@ const struct quantity *posterior_demands(struct arena *a, const struct demand_re
         .shape = SHAPE_BETA,
         .p = {prior + (double)r->failures, prior + (double)(r->demands - r->failures)},
         .times = 1};
-    q->text = arena_printf(a, "%s prior with %lld failure%s in %lld demand%s",
-                           demand_priors[r->prior], (long long)r->failures,
-                           r->failures == 1 ? "" : "s", (long long)r->demands,
-                           r->demands == 1 ? "" : "s");
+    q->text =
+        arena_printf(a, "%s prior with %lld failure%s in %lld demand%s", demand_priors[r->prior],
+                     (long long)r->failures, r->failures == 1 ? "" : "s", (long long)r->demands,
+                     r->demands == 1 ? "" : "s");
     return q;
 }

@@ -41,6 +41,13 @@ static node_id compile_frequency(struct building *b, const char *hazard)
     return figure_at(b->figures, compiled_part(b, hazard, PART_FREQUENCY)->main)->node;
 }
 
+static node_id compile_share(struct building *b, const struct expr *e)
+{
+    const struct compiled *u = compiled_of(b, e->name);
+    figure_id id = compiled_figure(b->figures, u, PROPERTY_SHARE, e->text, NULL);
+    return b->figures->list.at[id].node;
+}
+
 node_id compile_expr(struct building *b, const struct expr *e)
 {
     switch (e->op) {
@@ -49,9 +56,14 @@ node_id compile_expr(struct building *b, const struct expr *e)
         return compile_has_year(b, e->name) ? compile_in_year(b, e->name)
                                             : compiled_main_node(b, e->name);
     case EXPR_FAILS: return compiled_main_node(b, e->name);
+<<<<<<< HEAD
     case EXPR_FREQUENCY:
         return compile_has_year(b, e->name) ? compile_in_year(b, e->name)
                                             : compile_frequency(b, e->name);
+=======
+    case EXPR_FREQUENCY: return compile_frequency(b, e->name);
+    case EXPR_SHARE: return compile_share(b, e);
+>>>>>>> evidence
     case EXPR_CLEARANCE: return b->clearance;
     case EXPR_ADD: return compile_call(b, OP_ADD, e);
     case EXPR_SUBTRACT: return compile_call(b, OP_SUBTRACT, e);
@@ -158,15 +170,22 @@ static ohmen_status refuse_unsupported(struct figures *f, const struct object *o
 
 /* --- objects --- */
 
-/* A leaf or an expression as the main figure of its unit. */
+/* Opens a unit whose main figure is a leaf or an expression. */
+static void begin_main(struct figures *f, const struct variant *v, const struct object *o,
+                       enum property p, const struct quantity *q, const char *source,
+                       struct building *b)
+{
+    compiled_begin(f, v, o, o->id, b);
+    node_id n = compile_quantity(b, q);
+    b->unit->main = compiled_add(b, p, NULL, NULL, n, source, quantity_reads(f, q));
+}
+
 static struct compiled *compile_main(struct figures *f, const struct variant *v,
                                      const struct object *o, enum property p,
                                      const struct quantity *q, const char *source)
 {
     struct building b;
-    compiled_begin(f, v, o, o->id, &b);
-    node_id n = compile_quantity(&b, q);
-    b.unit->main = compiled_add(&b, p, NULL, NULL, n, source, quantity_reads(f, q));
+    begin_main(f, v, o, p, q, source, &b);
     compiled_end(&b);
     return b.unit;
 }
@@ -181,16 +200,31 @@ static ohmen_status compile_value(struct figures *f, const struct variant *v,
     return OHMEN_OK;
 }
 
+/* The shares of its kinds of fault. */
+static void add_shares(struct building *b, const struct rate *r)
+{
+    for (size_t i = 0; i < r->kinds_of_fault.n; i++) {
+        const struct quantity *q = posterior_share(b->figures->arena, r, i);
+        compiled_add(b, PROPERTY_SHARE, r->kinds_of_fault.keys[i], NULL, compile_quantity(b, q),
+                     r->source, q->text);
+    }
+}
+
 static ohmen_status compile_rate(struct figures *f, const struct variant *v, const struct object *o,
                                  struct compiled **out, ohmen_error *e)
 {
-    const struct rate *r = o->data;
+    const struct rate *r = o->data, *before = model_get(f->base, KIND_RATE, o->id);
     const struct quantity *q;
-    ohmen_status status = posterior_rate(f->arena, r, o->id, f->date, &q, e);
+    ohmen_status status =
+        posterior_rate_trended(f->arena, r, before ? before : r, o->id, f->date, &q, e);
     if (status != OHMEN_OK)
         return status;
     const char *source = r->prior && r->prior->source ? r->prior->source : r->source;
-    *out = compile_main(f, v, o, PROPERTY_RATE, q, source);
+    struct building b;
+    begin_main(f, v, o, PROPERTY_RATE, q, source, &b);
+    add_shares(&b, r);
+    compiled_end(&b);
+    *out = b.unit;
     return OHMEN_OK;
 }
 

@@ -39,7 +39,8 @@
     X(FREQUENCY, "frequency", "how often a hazard, or one of its outcomes, occurs")                \
     X(END, "end", "probability of one end of the event tree, given the hazard")                    \
     X(PROBABILITY, "probability", "probability of an outcome, given the hazard")                   \
-    X(SHARE, "share", "share of a branch, or of the faults that a function sees")                  \
+    X(SHARE, "share",                                                                              \
+      "share of a branch, of the faults that a function sees, or of a kind of fault")              \
     X(CLEARANCE, "clearance-time", "clearance time of a row")                                      \
     X(DAMAGE, "damage",                                                                            \
       "mean damage of an outcome, of one item of it, or of a hazard's "                            \

@@ -85,6 +85,24 @@ static bool dim_of_clearance(struct naming *n, struct place at, struct dim *out)
     return false;
 }
 
+/* A number, whatever it names. A rate that is not there is told with the references. */
+static bool dim_of_share(struct naming *n, const struct expr *e, struct place at, struct dim *out)
+{
+    const struct rate *r = model_get(n->c->model, KIND_RATE, e->name);
+    struct nearest near;
+    nearest_init(&near, e->text);
+    *out = dim_number;
+    for (size_t i = 0; r && i < r->kinds_of_fault.n; i++) {
+        if (text_equal(r->kinds_of_fault.keys[i], e->text))
+            return true;
+        nearest_offer(&near, r->kinds_of_fault.keys[i]);
+    }
+    if (r)
+        diag_add(n->c->diags, at, "the rate \"%s\" counts no kind of fault \"%s\"%s", e->name,
+                 e->text, nearest_hint(n->c->arena, &near));
+    return true;
+}
+
 static bool dim_of_name(void *ctx, const struct expr *e, struct place at, struct dim *out)
 {
     struct naming *n = ctx;
@@ -93,6 +111,7 @@ static bool dim_of_name(void *ctx, const struct expr *e, struct place at, struct
     case EXPR_CLEARANCE: return dim_of_clearance(n, at, out);
     case EXPR_FAILS: *out = dim_number; return true;
     case EXPR_FREQUENCY: *out = dim_frequency; return true;
+    case EXPR_SHARE: return dim_of_share(n, e, at, out);
     case EXPR_UNWANTED: *out = dim_frequency; return true;
     default: return false;
     }
@@ -140,6 +159,8 @@ struct certainty {
 static void look_at_name(void *ctx, const struct expr *e)
 {
     struct certainty *k = ctx;
+    if (e->op == EXPR_SHARE)
+        k->certain = false;
     if (e->op != EXPR_NAME)
         return;
     const struct value *v = model_get(k->c->model, KIND_VALUE, e->name);

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Rates: what they are per, priors, and whether events and exposure go together. What
- * depends on the day of evaluation is checked when a figure is made (evidence/posterior.h). */
+/* Rates: what they are per, priors, growth and ageing, kinds of fault, and whether events and
+ * exposure go together. What depends on the day of evaluation is checked when a figure is made
+ * (evidence/posterior.h, evidence/trend.h). */
 #include "model/check.h"
 #include "model/prior.h"
 
@@ -91,11 +92,86 @@ static void check_counts(struct checking *c, const struct object *o)
                  "exposure needs \"events\": how many were counted? (0 is a number too)");
 }
 
+/* --- growth and ageing --- */
+
+/* What lies outside is no rate of a plant, and would take its powers out of all numbers. */
+#define GREATEST_GROWTH 9.0 /* tenfold each year */
+#define LEAST_GROWTH (-0.9) /* a tenth each year */
+#define GREATEST_AGEING 100.0
+
+static void check_growth(struct checking *c, const struct object *o)
+{
+    const struct rate *r = o->data;
+    double growth = r->growth ? expr_constant(r->growth->expr) : 0;
+    if (growth < LEAST_GROWTH || growth > GREATEST_GROWTH)
+        diag_add(c->diags, node_get(o->node, "growth")->place,
+                 "growth lies between -90 %% and 900 %% per a");
+}
+
+/* An option may renew what ages: then its exposure was that of the old one. */
+static void check_youth(struct checking *c, const struct object *o)
+{
+    const struct rate *r = o->data;
+    const struct node *node = node_get(o->node, "exposure");
+    char since[DATE_TEXT];
+    for (size_t i = 0; i < r->exposure.n && !c->model->below; i++)
+        if (ROW(struct exposure, r->exposure, i)->from < r->since)
+            diag_add(c->diags, node_get(node->pairs[i].value, "from")->place,
+                     "this stretch begins before what ages was there (\"since\" is %s)",
+                     date_write(since, r->since));
+}
+
+static void check_ageing(struct checking *c, const struct object *o)
+{
+    const struct rate *r = o->data;
+    const struct node *node = node_get(o->node, "ageing");
+    if (!r->ageing)
+        return;
+    if (expr_constant(r->ageing->expr) > GREATEST_AGEING)
+        diag_add(c->diags, node->place, "an exponent of ageing is at most 100");
+    if (r->since == DAY_NONE)
+        diag_add(c->diags, node->place,
+                 "ageing needs \"since\": from which day on does the age count?");
+    else
+        check_youth(c, o);
+}
+
+/* --- kinds of fault --- */
+
+/* Who uses the share of a kind was checked before the change. */
+static void check_kinds_stay(struct checking *c, const struct object *o)
+{
+    const struct rate *before =
+        c->model->below ? model_get(c->model->below, KIND_RATE, o->id) : NULL;
+    const struct node *now = node_get(o->node, "kinds");
+    for (size_t i = 0; before && i < before->kinds_of_fault.n; i++)
+        if (!now || !node_get(now, before->kinds_of_fault.keys[i]))
+            diag_add(c->diags, check_place(o, now),
+                     "a change cannot take the kind \"%s\" from \"%s\": give it a count of 0",
+                     before->kinds_of_fault.keys[i], o->id);
+}
+
+static void check_kinds(struct checking *c, const struct object *o)
+{
+    const struct rate *r = o->data;
+    const struct node *kinds_node = node_get(o->node, "kinds");
+    if (kinds_node && r->kinds_of_fault.n < 2)
+        diag_add(c->diags, kinds_node->place, "shares need two kinds of fault or more, found %zu",
+                 r->kinds_of_fault.n);
+    if (r->kinds_prior >= 0 && !kinds_node)
+        diag_add(c->diags, node_get(o->node, "kinds-prior")->place,
+                 "\"kinds-prior\" goes with counts of \"kinds\"");
+    check_kinds_stay(c, o);
+}
+
 void check_rate(struct checking *c, const struct object *o)
 {
     const struct rate *r = o->data;
     struct dim want;
     check_counts(c, o);
+    check_growth(c, o);
+    check_ageing(c, o);
+    check_kinds(c, o);
     if (!check_dim_of(c, o->id, &want))
         return;
     if (want.e[DIM_TIME] != -1)

@@ -122,7 +122,11 @@ struct rate {
     day since;
     struct quantity *ageing;
     struct rows kinds_of_fault; /* of int64_t */
+    int kinds_prior;            /* enum share_prior, or -1: uniform */
 };
+
+/* Dirichlet priors of shares: 1 or 1/2 for each kind. */
+enum share_prior { SHARE_PRIOR_UNIFORM, SHARE_PRIOR_JEFFREYS };
 
 struct demand_record {
     struct quantity *is;
@@ -288,6 +292,7 @@ extern const char *const scope_words[],
     *const source_kinds[], *const element_kinds[], *const prior_forms[],
                                                        *const prior_solutions[],
                                                            *const demand_priors[],
-                                                               *const hazard_status[];
+                                                               *const share_priors[],
+                                                                   *const hazard_status[];
 
 #endif

@@ -9,6 +9,7 @@ const char *const element_kinds[] = {"relay",   "receiver",  "setting",      "ct
 const char *const prior_forms[] = {"jeffreys", "constrained", "gamma", "lognormal", "fixed", NULL};
 const char *const prior_solutions[] = {"upper", "lower", NULL};
 const char *const demand_priors[] = {"jeffreys", "uniform", NULL};
+const char *const share_priors[] = {"uniform", "jeffreys", NULL};
 const char *const hazard_status[] = {"open", "being-treated", "accepted", "closed", NULL};
 
 #define SOURCE_FIELD(T)                                                                            \
@@ -88,7 +89,7 @@ static const struct field exposure_fields[] = {
 static const struct table table_exposure =
     TABLE(struct exposure, "exposure", exposure_fields, "A dated stretch");
 static const struct field exposure_part = PART(STRUCT, "A stretch", .table = &table_exposure);
-static const struct field count_part = PART(COUNT, "Events", .low = 0, .high = 1000000000000);
+static const struct field count_part = PART(COUNT, "Faults", .low = 0, .high = 1000000000000);
 
 static const struct group rate_is_or_prior[] = {{true, {"is", "prior"}}};
 static const struct field rate_fields[] = {
@@ -104,13 +105,17 @@ static const struct field rate_fields[] = {
     F(struct rate, exposure, "exposure", ROWS,
       "Dated stretches of local exposure, which add up even where they overlap",
       .part = &exposure_part),
-    F(struct rate, growth, "growth", QUANTITY, "Growth per year", .dim = FREQUENCY,
-      .flags = CERTAIN | CONSTANT | LATER),
-    F(struct rate, since, "since", DATE, "Begin of the ageing", .flags = LATER),
-    F(struct rate, ageing, "ageing", QUANTITY, "Exponent of the power law of ageing", .dim = NUMBER,
+    F(struct rate, growth, "growth", QUANTITY, "Growth of the rate per year, such as 2 % per a",
+      .dim = FREQUENCY, .flags = CERTAIN | CONSTANT | LATER),
+    F(struct rate, since, "since", DATE, "Day from which the age counts", .flags = LATER),
+    F(struct rate, ageing, "ageing", QUANTITY,
+      "Exponent of the power law of ageing; above 1 the rate rises with age", .dim = NUMBER,
       .flags = CERTAIN | CONSTANT | POSITIVE | LATER),
-    F(struct rate, kinds_of_fault, "kinds", ROWS, "Local events by kind of fault",
-      .part = &count_part, .flags = LATER),
+    F(struct rate, kinds_of_fault, "kinds", ROWS, "Local faults counted by kind, two kinds or more",
+      .part = &count_part),
+    F(struct rate, kinds_prior, "kinds-prior", WORD,
+      "Prior of the shares: 1 or 1/2 for each kind; uniform where it is left out",
+      .words = share_priors),
     SOURCE_FIELD(struct rate),
     NOTE_FIELD(struct rate),
 };

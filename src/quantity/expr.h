@@ -16,15 +16,16 @@
  *              | "lookup(" expression { ";" literal "->" expression } ")"
  *              | "unwanted(" name { ";" name literal } ")" stress class and its frequency
  *              | "fails(" name ")" | "frequency(" name ")"
+ *              | "share(" name ";" name ")"               a rate and one of its kinds
  *   name       = letter { letter | digit | "-" }, at most 64, not ending in "-", no unit,
  *                no reserved word; letters and digits are those of ASCII
  *
  * Reserved words: per in was within clearance-time min max exp log sqrt lookup unwanted fails
- * frequency yes no none all any of at-least absent rest at sees (the last two part the names of
- * figures), and all units; `min` is the minute behind a number and the function before "(". `%`
- * may follow a number directly. "/" behind a literal and before a unit belongs to the literal.
- * `lookup(x; b1 -> v1; b2 -> v2; ...)` is v of the last b that x reaches, and v1 below b1; the b
- * rise strictly.
+ * frequency share yes no none all any of at-least absent rest at sees (the last two part the
+ * names of figures), and all units; `min` is the minute behind a number and the function before
+ * "(". `%` may follow a number directly. "/" behind a literal and before a unit belongs to the
+ * literal. `lookup(x; b1 -> v1; b2 -> v2; ...)` is v of the last b that x reaches, and v1 below
+ * b1; the b rise strictly.
  *
  * No function here recurses deeper than a few calls for each nested parenthesis, however long a
  * chain of + - * / is. */
@@ -51,14 +52,15 @@ enum expr_op {
     EXPR_LOOKUP,    /* 1 + 2k: x, b1, v1, b2, v2, ... */
     EXPR_UNWANTED,  /* name: a scheme; k pairs (EXPR_NAME of a stress class, literal) */
     EXPR_FAILS,     /* name: an element */
-    EXPR_FREQUENCY  /* name: a hazard */
+    EXPR_FREQUENCY, /* name: a hazard */
+    EXPR_SHARE      /* name: a rate; text: one of its kinds of fault */
 };
 
 struct expr {
     enum expr_op op;
     double value;     /* EXPR_LITERAL: in base units */
     struct dim dim;   /* EXPR_LITERAL: set by the parser; others: by expr_check */
-    const char *text; /* EXPR_LITERAL: canonical text, "3 per 100 km a" */
+    const char *text; /* EXPR_LITERAL: canonical text, "3 per 100 km a"; EXPR_SHARE: the kind */
     const char *name;
     size_t n;
     struct expr **args;
@@ -85,8 +87,8 @@ bool expr_equal(const struct expr *a, const struct expr *b);
 /* What names mean to a check. */
 struct expr_names {
     void *ctx;
-    /* The dimension of EXPR_NAME, EXPR_CLEARANCE, EXPR_WAS and the three calls on
-     * objects (per time for unwanted and frequency, pure for fails). `at` is the
+    /* The dimension of EXPR_NAME, EXPR_CLEARANCE, EXPR_WAS and the four calls on
+     * objects (per time for unwanted and frequency, pure for fails and share). `at` is the
      * place of e itself. Stress classes inside unwanted are not asked. false when
      * the name is unknown or not usable here: then it has added a diagnostic. */
     bool (*dim)(void *ctx, const struct expr *e, struct place at, struct dim *out);

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Calls: the functions of numbers, lookup, and the three calls that name an
+/* Calls: the functions of numbers, lookup, and the four calls that name an
  * object. Owns the table of functions. */
 #include <string.h>
 
@@ -11,6 +11,7 @@ static struct expr *parse_function(struct parser *ps, struct expr *e);
 static struct expr *parse_lookup(struct parser *ps, struct expr *e);
 static struct expr *parse_unwanted(struct parser *ps, struct expr *e);
 static struct expr *parse_object(struct parser *ps, struct expr *e);
+static struct expr *parse_share(struct parser *ps, struct expr *e);
 
 static const struct call_row {
     const char *word;
@@ -27,6 +28,7 @@ static const struct call_row {
     {"unwanted", EXPR_UNWANTED, parse_unwanted},
     {"fails", EXPR_FAILS, parse_object},
     {"frequency", EXPR_FREQUENCY, parse_object},
+    {"share", EXPR_SHARE, parse_share},
 };
 
 enum { N_CALLS = sizeof calls / sizeof calls[0] };
@@ -139,6 +141,17 @@ static struct expr *parse_object(struct parser *ps, struct expr *e)
     if (!e->name || !parse_close(ps, "')'"))
         return NULL;
     return e;
+}
+
+static struct expr *parse_share(struct parser *ps, struct expr *e)
+{
+    e->name = object_name(ps, "the name of a rate");
+    if (!e->name)
+        return NULL;
+    if (!next_argument(ps))
+        return parse_unexpected(ps, "';' and a kind of fault, such as share(cable-fault; earth)");
+    e->text = object_name(ps, "the name of a kind of fault");
+    return e->text && parse_close(ps, "')'") ? e : NULL;
 }
 
 /* A stress class and how often it comes: through-fault 14 per a. */

@@ -179,6 +179,7 @@ static bool check_other(struct checker *c, struct expr *e)
     case EXPR_UNWANTED:
     case EXPR_FAILS:
     case EXPR_FREQUENCY:
+    case EXPR_SHARE:
         return check_named(c, e);
     default:
         break;

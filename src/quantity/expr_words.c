@@ -8,7 +8,7 @@
 
 static const char *const reserved[] = {
     "per", "in", "was", "within", "clearance-time", "min", "max", "exp", "log", "sqrt",
-    "lookup", "unwanted", "fails", "frequency", "yes", "no", "none", "all", "any", "of",
+    "lookup", "unwanted", "fails", "frequency", "share", "yes", "no", "none", "all", "any", "of",
     "at-least", "absent", "rest", "at", "sees",
 };
 

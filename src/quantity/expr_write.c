@@ -123,6 +123,9 @@ static void write_other(struct text *out, const struct expr *e)
     case EXPR_CLEARANCE:
         text_add(out, "clearance-time");
         return;
+    case EXPR_SHARE:
+        text_printf(out, "share(%s; %s)", e->name, e->text);
+        return;
     case EXPR_NEGATE:
         text_byte(out, '-');
         write_at_least(out, e->args[0], RANK_POWER);

@@ -285,6 +285,7 @@ static void note_name(void *ctx, const struct expr *e)
     case EXPR_UNWANTED:
     case EXPR_FAILS:
     case EXPR_FREQUENCY:
+    case EXPR_SHARE:
         *found = true;
         return;
     default:

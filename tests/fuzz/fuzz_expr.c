@@ -13,7 +13,8 @@ const char *const fuzz_words[] = {
     " + ", " - ", " * ", " / ", "*", "/", "-", "^2", "^-0.5", "(", ")", "; ", ",", " -> ", "1",
     "0.5", "1e-3", "1E400", "007", " %", "90 %", " kEUR", " EUR/kWh", " h", " per a",
     " per 100 km a", "1 in 340 a", " in ", " per ", " within ", "min(", "max(", "exp(", "log(",
-    "sqrt(", "lookup(", "unwanted(", "fails(", "frequency(", "was", "clearance-time", "name-1",
+    "sqrt(", "lookup(", "unwanted(", "fails(", "frequency(", "share(", "was",
+    "clearance-time", "name-1",
     "kW h", "m^2", "section", "\t", "\n", "\xC3\xA9", "\xC2\xB5", ":", "..",
     "((((((((((((((((((((((((", "------------", NULL};
 

@@ -176,6 +176,8 @@ static const char *of_probabilities(struct generator *g, unsigned depth)
                                         "((X) + (Y)) / (3 - (Y))"};
     if (g->ids[KIND_ELEMENT].n && random_chance(g, 4))
         return arena_printf(g->arena, "fails(%s)", random_id(g, KIND_ELEMENT));
+    if (g->shares.n && random_chance(g, 4))
+        return g->shares.at[random_index(&g->random, g->shares.n)];
     return print2(g, random_pick(&g->random, forms), random_expression(g, PROBABILITY, depth),
                   random_expression(g, PROBABILITY, depth));
 }
@@ -410,7 +412,8 @@ static bool learns(const struct node *rate)
 
 static void add_rates(struct generator *g)
 {
-    static const char *const skip[] = {"exposure", "per", "events", NULL};
+    static const char *const skip[] = {"per",    "events", "exposure",    "growth", "since",
+                                       "ageing", "kinds",  "kinds-prior", NULL};
     static const char *const per[] = {"section a", "km a", "a", "bay h"};
     static const char *const amounts[] = {"8 section", "14 km", "3", "40 bay"};
     struct node *section = make_map(g);
@@ -434,6 +437,7 @@ static void add_rates(struct generator *g)
             put_text(g, m, "events", arena_printf(g->arena, "%u", random_draw(g, 0, 12)));
             put_node(g, m, "exposure", make_pair(g, "first", stretch));
         }
+        random_course(g, m, g->ids[KIND_RATE].at[i]);
         fill_fields(g, m, kinds[KIND_RATE].table, skip);
         put_node(g, section, g->ids[KIND_RATE].at[i], m);
     }

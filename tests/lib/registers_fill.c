@@ -357,12 +357,45 @@ static void add_trees(struct generator *g)
     put_node(g, section, "D-TREE", m);
 }
 
+/* --- rates --- */
+
+static const char *const fault_kinds[] = {"earth", "two-phase", "three-phase", "evolving"};
+
+static void random_kinds(struct generator *g, struct node *rate, const char *id)
+{
+    struct node *counts = make_map(g);
+    for (unsigned i = 0, n = random_draw(g, 2, 4); i < n; i++) {
+        put_text(g, counts, fault_kinds[i], arena_printf(g->arena, "%u", random_draw(g, 0, 30)));
+        *array_push(g->arena, &g->shares) =
+            arena_printf(g->arena, "share(%s; %s)", id, fault_kinds[i]);
+    }
+    put_node(g, rate, "kinds", counts);
+    if (random_chance(g, 2))
+        put_text(g, rate, "kinds-prior", share_priors[random_draw(g, 0, 1)]);
+}
+
+void random_course(struct generator *g, struct node *rate, const char *id)
+{
+    bool stored = g->shape.stored;
+    if (stored && random_chance(g, 4))
+        put_text(g, rate, "growth",
+                 arena_printf(g->arena, "%s%s %% per a", random_chance(g, 3) ? "-" : "",
+                              random_number(g, 0.2, 9)));
+    if (stored && random_chance(g, 4)) {
+        put_text(g, rate, "ageing", random_number(g, 0.4, 5));
+        put_text(g, rate, "since", arena_printf(g->arena, "200%u-02-03", random_draw(g, 0, 9)));
+    }
+    if (random_chance(g, 3))
+        random_kinds(g, rate, id);
+}
+
 /* --- objects that nothing leads to --- */
 
 /* Priors by percentiles. */
 static void add_percentile_rate(struct generator *g)
 {
-    static const char *const skip[] = {"per", "events", "exposure", NULL};
+    static const char *const skip[] = {"per",   "events", "exposure",    "growth", "since",
+                                       "ageing", "kinds",  "kinds-prior", NULL};
     struct node *prior = make_map(g), *m = make_map(g);
     bool mean = random_chance(g, 2), high = random_chance(g, 2);
     put_text(g, prior, mean ? "mean" : random_chance(g, 2) ? "p5" : "p50", "1.3e-3 per km a");
@@ -376,6 +409,7 @@ static void add_percentile_rate(struct generator *g)
     put_text(g, m, "per", "km a");
     put_text(g, m, "since", "1998-03-01");
     put_node(g, m, "prior", prior);
+    random_course(g, m, "rate-stored");
     fill_fields(g, m, kinds[KIND_RATE].table, skip);
     put_node(g, (struct node *)node_get(g->root, "rates"), "rate-stored", m);
 }

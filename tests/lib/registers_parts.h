@@ -24,6 +24,7 @@ struct generator {
     struct ids rate_per; /* of each usable rate: "section a", "km a", "a" */
     struct ids own;      /* elements with a plain probability of their own */
     struct ids absent;   /* schemes that are absent */
+    struct ids shares;   /* "share(rate-1; earth)" */
 };
 
 /* --- drawing --- */
@@ -69,6 +70,8 @@ void fill_fields(struct generator *g, struct node *m, const struct table *t,
 struct node *random_record(struct generator *g);
 /* A structure over the elements and the earlier schemes around number `around`. */
 struct node *random_structure(struct generator *g, unsigned around, unsigned depth);
+/* Growth, ageing and kinds of fault of a rate, which begins to age before 2010. */
+void random_course(struct generator *g, struct node *rate, const char *id);
 void registers_add_stored(struct generator *g);
 
 /* --- hazards and options (registers_hazard.c) --- */

@@ -2,33 +2,22 @@
 /* What rates learn from events: exposure over dated stretches, the day of evaluation, how
  * the result reads, and what is refused, with its place. Figures by hand; published ones
  * are in tests/published/evidence.txt. */
-#include <check.h>
+#include "evidence_test.h"
+
 #include <math.h>
 #include <stdlib.h>
 #include <string.h>
 
 #include "doc/yaml.h"
-#include "evidence/posterior.h"
-#include "loaded.h"
 
-#define HEAD                                                                                       \
-    "register: {title: T, currency: EUR, prices: 2026, horizon: 1 a, discount: 0 per a, "          \
-    "counts: [section, bay]}\n"
-#define PER "rates: {r: {per: section a, "
-
-struct sheet {
-    struct arena *arena;
-    struct loaded l;
-};
-
-static struct sheet sheet_of(const char *rate)
+struct sheet sheet_of(const char *rate)
 {
     struct sheet s = {.arena = arena_new(NULL)};
     loaded_text(&s.l, s.arena, arena_printf(s.arena, HEAD PER "%s}}\n", rate), NULL);
     return s;
 }
 
-static const struct rate *rate_of(const struct sheet *s)
+const struct rate *rate_of(const struct sheet *s)
 {
     return model_get(s->l.model, KIND_RATE, "r");
 }
@@ -61,10 +50,11 @@ START_TEST(exposure_accrues)
     const char *text = arena_printf(
         s.arena, HEAD PER "prior: {form: jeffreys}, events: 3, exposure: {%s}}}\n", c->stretches);
     double got = NAN;
+    struct trend flat = {0};
     const struct quantity *q = NULL;
     day date = date_of(c->year, c->month, c->dom);
     loaded_text(&s.l, s.arena, text, NULL);
-    ck_assert_int_eq(posterior_exposure(rate_of(&s), "r", date, &got, NULL), OHMEN_OK);
+    ck_assert_int_eq(posterior_exposure(rate_of(&s), "r", date, &flat, &got, NULL), OHMEN_OK);
     ck_assert_double_eq_tol(got, c->expected, 1e-14 * c->expected);
     ck_assert_int_eq(posterior_rate(s.arena, rate_of(&s), "r", date, &q, NULL), OHMEN_OK);
     ck_assert_double_eq_tol(quantity_mean(q) * c->expected, 3.5, 1e-13);
@@ -157,6 +147,7 @@ static const struct bad_case {
     const char *rate; /* line 2, behind the 28 columns of PER */
     unsigned column;
     const char *words;
+    unsigned line; /* 0: 2 */
 } bad[] = {
     {"prior: {form: jeffreys}, events: 3", 62, "events need \"exposure\""},
     {"prior: {form: jeffreys}, exposure: {x: {from: 2020-01-01, amount: 1 section}}", 64,
@@ -193,6 +184,29 @@ static const struct bad_case {
     {"prior: {form: lognormal, mean: 1 per section a, weight: 1}", 36,
      "of the form lognormal takes median and error-factor"},
     {"prior: {form: constrained, mean: 1 per section a, weight: 1}", 36, "takes mean alone"},
+    {"is: 1 per section a, ageing: 2", 58, "ageing needs \"since\""},
+    {"is: 1 per section a, ageing: 101, since: 2001-01-01", 58, "is at most 100"},
+    {"is: 1 per section a, growth: -91 % per a", 58, "growth lies between"},
+    {"is: 1 per section a, growth: 9.1 per a", 58, "growth lies between"},
+    {"prior: {form: jeffreys}, ageing: 2, since: 2020-01-02, events: 1, exposure: {x: {from: "
+     "2020-01-01, amount: 1 section}}", 116,
+     "begins before what ages was there (\"since\" is 2020-01-02)"},
+    {"is: 1 per section a, kinds: {earth: 3}", 57, "two kinds of fault or more, found 1"},
+    {"is: 1 per section a, kinds: {}", 57, "two kinds of fault or more, found 0"},
+    {"is: 1 per section a, kinds-prior: uniform", 63, "goes with counts of \"kinds\""},
+    {"is: 1 per section a * share(r; earth), kinds: {earth: 3, other: 4}", 51,
+     "\"r\" is defined by itself: r -> r"},
+    {"is: 1 per section a * share(q; earth)", 51, "there is no \"q\"; expected a rate"},
+    {"is: 1 per section a}, q: {per: a, is: share(r; earth) * 1 per a", 67,
+     "the rate \"r\" counts no kind of fault \"earth\""},
+    {"is: 1 per section a, kinds: {earth: 3, other: 4}}, q: {per: a, is: share(r; erth) * 1 per a",
+     96, "the rate \"r\" counts no kind of fault \"erth\" (did you mean \"earth\"?)"},
+    {"is: 1 per section a, kinds: {earth: 3, other: 4}}, q: {per: a, is: share(r; earth) * 1 a",
+     96, "expected 1 / time, found time"},
+    {"is: 1 per section a, kinds: {earth: 3, other: 4, x: 0}}}\noptions: {O: {name: O, change: "
+     "{rates: {r: {kinds: {earth: no}}}}", 57, "a change cannot take the kind \"earth\""},
+    {"is: 1 per section a, kinds: {earth: 3, other: 4}}}\nstates: {Z: {is: {sound: share(r; "
+     "earth), aged: rest}", 26, "a name in it is uncertain", 3},
 };
 #define BAD ((int)(sizeof bad / sizeof bad[0]))
 
@@ -211,8 +225,9 @@ START_TEST(refused_with_its_place)
     const char *line = diag_line(a, &d.list.at[0]);
     ck_assert_uint_eq(d.count, 1);
     ck_assert_msg(strstr(line, c->words) != NULL, "%s", line);
-    ck_assert_msg(d.list.at[0].place.line == 2 && d.list.at[0].place.column == c->column, "%s: %s",
-                  line, c->rate);
+    const struct place *at = &d.list.at[0].place;
+    ck_assert_msg(at->line == (c->line ? c->line : 2) && at->column == c->column, "%s: %s", line,
+                  c->rate);
     arena_free(a);
 }
 END_TEST
@@ -226,6 +241,8 @@ int main(void)
     tcase_add_loop_test(t, how_it_reads, 0, TEXTS);
     tcase_add_loop_test(t, refused_with_its_place, 0, BAD);
     suite_add_tcase(s, t);
+    suite_add_tcase(s, case_trend());
+    suite_add_tcase(s, case_share());
     SRunner *sr = srunner_create(s);
     srunner_run_all(sr, CK_NORMAL);
     int failed = srunner_ntests_failed(sr) != 0 || srunner_ntests_run(sr) == 0;

@@ -81,6 +81,8 @@ static const struct {
     {"unwanted(T1-MAIN; through-fault 14 per a; inrush 3 per a)", NULL, NAN, "1/a"},
     {"unwanted( T1-MAIN )", "unwanted(T1-MAIN)", NAN, "1/a"},
     {"fails(NH-Q1)", NULL, NAN, ""},
+    {"share(cable-fault; two-phase)", NULL, NAN, ""},
+    {"3 h * share( r ;earth )^2", "3 h * share(r; earth)^2", NAN, "a"},
     {"frequency(H-BUS1) * fails(NH-Q1)", NULL, NAN, "1/a"},
 };
 

@@ -55,12 +55,14 @@ static struct made leaf(struct maker *m)
 {
     static const char *const names[] = {"x", "bus-load", "NH-51A", "y"};
     static const enum expr_op ops[] = {EXPR_NAME, EXPR_WAS, EXPR_CLEARANCE, EXPR_FAILS,
-                                       EXPR_FREQUENCY, EXPR_UNWANTED};
+                                       EXPR_FREQUENCY, EXPR_UNWANTED, EXPR_SHARE};
     if (random_index(&m->r, 6) > 0)
         return literal(m);
     struct expr *e = node(m, random_pick(&m->r, ops), 0);
     if (e->op != EXPR_WAS && e->op != EXPR_CLEARANCE)
         e->name = random_pick(&m->r, names);
+    if (e->op == EXPR_SHARE)
+        e->text = random_pick(&m->r, names);
     if (e->op != EXPR_UNWANTED)
         return (struct made){e, NAN, 0};
     e->n = 2 * random_index(&m->r, 3);

@@ -101,6 +101,15 @@ static const struct {
      "the name of a scheme"},
     {"fails(kW)", 7, "'kW' is a unit and cannot be a name"},
     {"fails(was)", 7, "'was' is a reserved word and cannot be a name"},
+    {"share(3; earth)", 7, "a number is not expected here (digits are not grouped by blanks); "
+     "expected the name of a rate"},
+    {"share(r)", 8, "')' is not expected here; expected ';' and a kind of fault, such as "
+     "share(cable-fault; earth)"},
+    {"share(r; )", 10, "')' is not expected here; expected the name of a kind of fault"},
+    {"share(r; kW)", 10, "'kW' is a unit and cannot be a name"},
+    {"share(r; earth; x)", 15, "';' parts the arguments of a call and is not expected here; "
+     "expected ')'"},
+    {"share + 2", 1, "'share' needs its arguments in parentheses"},
     {"unwanted(T1; inrush)", 20, "')' is not expected here; expected the frequency of the stress "
      "class, such as 14 per a"},
     {"unwanted(T1; 3)", 14, "a number is not expected here (digits are not grouped by blanks); "

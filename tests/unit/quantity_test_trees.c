@@ -98,7 +98,8 @@ START_TEST(uses_and_equal)
 {
     static const char *const texts[] = {
         "x", "y", "2", "2 h", "x + y", "x - y", "y + x", "x + x + y", "x + (x + y)", "min(x; y)",
-        "max(x; y)", "min(x; y; 2)", "-x", "fails(x)", "frequency(x)", "unwanted(x)", "was"};
+        "max(x; y)", "min(x; y; 2)", "-x", "fails(x)", "frequency(x)", "unwanted(x)", "was",
+        "share(x; y)", "share(x; z)", "share(z; y)"};
     struct arena *a = arena_new(NULL);
     size_t n = sizeof texts / sizeof texts[0];
     for (size_t i = 0; i < n; i++)
