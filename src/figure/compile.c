@@ -56,14 +56,10 @@ node_id compile_expr(struct building *b, const struct expr *e)
         return compile_has_year(b, e->name) ? compile_in_year(b, e->name)
                                             : compiled_main_node(b, e->name);
     case EXPR_FAILS: return compiled_main_node(b, e->name);
-<<<<<<< HEAD
     case EXPR_FREQUENCY:
         return compile_has_year(b, e->name) ? compile_in_year(b, e->name)
                                             : compile_frequency(b, e->name);
-=======
-    case EXPR_FREQUENCY: return compile_frequency(b, e->name);
     case EXPR_SHARE: return compile_share(b, e);
->>>>>>> evidence
     case EXPR_CLEARANCE: return b->clearance;
     case EXPR_ADD: return compile_call(b, OP_ADD, e);
     case EXPR_SUBTRACT: return compile_call(b, OP_SUBTRACT, e);

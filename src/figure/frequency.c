@@ -4,6 +4,8 @@
  *
  * The unit stands apart from the hazard's own, since elements may ask for it (revealed-by) while
  * the hazard's response asks for them. */
+#include <math.h>
+
 #include "evidence/trend.h"
 #include "figure/horizon.h"
 #include "figure/span.h"
@@ -73,20 +75,25 @@ static node_id grown(struct building *b, node_id n, const struct hazard *h)
     if (!h->growth)
         return n;
     struct trend t = {.growth = expr_constant(h->growth->expr)};
+    return times(b, n, trend_in(b, &t));
+}
+
+/* The mean of a trend over the year; before its ageing begins nothing is there to age. */
+static double trend_in(const struct building *b, const struct trend *t)
+{
     struct window w = from_evaluation(b);
-    return times(b, n, trend_mean(&t, w.from, w.to));
+    double begin = t->ages ? fmax(w.from, -t->age) : w.from;
+    return begin < w.to ? trend_mean(t, begin, w.to) * (w.to - begin) / (w.to - w.from) : 0;
 }
 
 node_id compile_in_year(struct building *b, const char *id)
 {
     const struct object *o = model_find(b->variant->model, id);
     struct trend t;
-    struct window w;
     switch (o->kind) {
     case KIND_RATE:
-        w = from_evaluation(b);
         trend_of(o->data, id, b->figures->date, &t, NULL);
-        return times(b, compiled_main_node(b, id), trend_mean(&t, w.from, w.to));
+        return times(b, compiled_main_node(b, id), trend_in(b, &t));
     case KIND_HAZARD:
         return grown(b, compile_expr(b, ((const struct hazard *)o->data)->frequency->expr),
                      o->data);

@@ -70,13 +70,8 @@ void check_references(struct checking *c, const struct object *o)
 /* Kinds whose references must not lead back to where they began. */
 static bool is_ordered(enum kind k)
 {
-<<<<<<< HEAD
     return k == KIND_VALUE || k == KIND_RATE || k == KIND_TYPE || k == KIND_ELEMENT ||
            k == KIND_SCHEME || k == KIND_HAZARD || k == KIND_SITE;
-=======
-    return k == KIND_VALUE || k == KIND_RATE || k == KIND_SCHEME || k == KIND_HAZARD ||
-           k == KIND_SITE;
->>>>>>> evidence
 }
 
 /* An object, or only the frequency of a hazard: a relay may be revealed by a hazard that it

@@ -25,13 +25,8 @@ void check_object(struct checking *c, const struct object *o);
 /* References exist and are of the right kind. */
 void check_references(struct checking *c, const struct object *o);
 
-<<<<<<< HEAD
 /* No value, rate, type, element, scheme, hazard or site is defined by itself; all objects of the
  * model at once (of a variant: those that it changed). */
-=======
-/* No value, rate, scheme, hazard or site is defined by itself; all objects of the model at
- * once (of a variant: those that it changed). */
->>>>>>> evidence
 void check_cycles(struct checking *c);
 
 /* Quantities agree in dimension with themselves and with their fields. */

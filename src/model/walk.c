@@ -169,16 +169,12 @@ static void references_of_expr(void *ctx, const struct expr *e)
         break;
     case EXPR_UNWANTED: add_reference(c, e->name, KIND_BIT(KIND_SCHEME), at); break;
     case EXPR_FAILS: add_reference(c, e->name, KIND_BIT(KIND_ELEMENT), at); break;
-<<<<<<< HEAD
+    case EXPR_SHARE: add_reference(c, e->name, KIND_BIT(KIND_RATE), at); break;
     case EXPR_FREQUENCY:
         c->frequency = true;
         add_reference(c, e->name, KIND_BIT(KIND_HAZARD), at);
         c->frequency = false;
         break;
-=======
-    case EXPR_SHARE: add_reference(c, e->name, KIND_BIT(KIND_RATE), at); break;
-    case EXPR_FREQUENCY: add_reference(c, e->name, KIND_BIT(KIND_HAZARD), at); break;
->>>>>>> evidence
     default: break;
     }
 }

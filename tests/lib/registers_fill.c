@@ -394,7 +394,7 @@ void random_course(struct generator *g, struct node *rate, const char *id)
 /* Priors by percentiles. */
 static void add_percentile_rate(struct generator *g)
 {
-    static const char *const skip[] = {"per",   "events", "exposure",    "growth", "since",
+    static const char *const skip[] = {"per",    "events", "exposure",    "growth", "since",
                                        "ageing", "kinds",  "kinds-prior", NULL};
     struct node *prior = make_map(g), *m = make_map(g);
     bool mean = random_chance(g, 2), high = random_chance(g, 2);
