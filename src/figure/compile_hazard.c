@@ -333,13 +333,11 @@ static void add_ends(struct tree *t)
 /* --- the hazard --- */
 
 static ohmen_status too_intertwined(struct building *b, const char *what, const char *id,
-                                    ohmen_error *e)
+                                    const char *needs, ohmen_error *e)
 {
     compiled_give_up(b);
-    return error_set(e, OHMEN_COMPUTE,
-                     "%s \"%s\" is too intertwined: it needs more than %u diagram nodes, or nests "
-                     "too deep",
-                     what, id, DIAGRAM_NODES);
+    return error_set(e, OHMEN_COMPUTE, "%s \"%s\" is too intertwined: %s", what, id,
+                     arena_printf(b->figures->arena, needs, DIAGRAM_NODES));
 }
 
 ohmen_status compile_hazard(struct figures *f, const struct variant *v, const struct object *o,
@@ -359,7 +357,8 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
     grow_rows(&t);
     const struct diagram *d = t.wiring.too_deep ? NULL : freeze(&t);
     if (!d)
-        return too_intertwined(&b, "the response of", o->id, e);
+        return too_intertwined(&b, "the response of", o->id,
+                               "its schemes need more than %u diagram nodes, or nest too deep", e);
     add_diagram(&t, d);
     add_ends(&t);
     compile_outcomes(&t);
@@ -404,7 +403,8 @@ ohmen_status compile_scheme(struct figures *f, const struct variant *v, const st
     bfun fails = diagram_not(w.builder, wiring_works(&w, o->id));
     x->diagram = w.too_deep ? NULL : diagram_freeze(f->arena, w.builder, 1, &fails);
     if (!x->diagram)
-        return too_intertwined(&b, "the scheme", o->id, e);
+        return too_intertwined(&b, "the scheme", o->id,
+                               "it needs more than %u diagram nodes, or nests too deep", e);
     b.unit->exports = x;
     add_scheme(&b, x, &w);
     compiled_end(&b);

@@ -70,20 +70,20 @@ static node_id times(struct building *b, node_id n, double factor)
     return graph_op2(b->figures->graph, OP_MULTIPLY, n, compile_const(b, factor, dim_number, NULL));
 }
 
-static node_id grown(struct building *b, node_id n, const struct hazard *h)
-{
-    if (!h->growth)
-        return n;
-    struct trend t = {.growth = expr_constant(h->growth->expr)};
-    return times(b, n, trend_in(b, &t));
-}
-
 /* The mean of a trend over the year; before its ageing begins nothing is there to age. */
 static double trend_in(const struct building *b, const struct trend *t)
 {
     struct window w = from_evaluation(b);
     double begin = t->ages ? fmax(w.from, -t->age) : w.from;
     return begin < w.to ? trend_mean(t, begin, w.to) * (w.to - begin) / (w.to - w.from) : 0;
+}
+
+static node_id grown(struct building *b, node_id n, const struct hazard *h)
+{
+    if (!h->growth)
+        return n;
+    struct trend t = {.growth = expr_constant(h->growth->expr)};
+    return times(b, n, trend_in(b, &t));
 }
 
 node_id compile_in_year(struct building *b, const char *id)

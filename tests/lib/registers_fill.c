@@ -407,7 +407,6 @@ static void add_percentile_rate(struct generator *g)
     if (g->ids[KIND_SOURCE].n)
         put_text(g, prior, "source", random_id(g, KIND_SOURCE));
     put_text(g, m, "per", "km a");
-    put_text(g, m, "since", "1998-03-01");
     put_node(g, m, "prior", prior);
     random_course(g, m, "rate-stored");
     fill_fields(g, m, kinds[KIND_RATE].table, skip);

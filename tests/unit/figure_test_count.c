@@ -40,7 +40,8 @@ static void compile_all(struct loaded *l)
         loaded_compile(l, base, l->model->of[KIND_HAZARD].at[i]->id);
 }
 
-/* Under one option: one new unit in one new section; others are what they were. */
+/* Under one option: two new units, the hazard and its frequency, in two new sections; others are
+ * what they were. */
 static void compile_changed(struct loaded *l, const char *option, double risk)
 {
     struct graph *g = l->figures->graph;
@@ -48,12 +49,12 @@ static void compile_changed(struct loaded *l, const char *option, double risk)
     const char *changed = arena_printf(l->arena, "H-%d", CHANGED);
     const struct variant *v = loaded_variant(l, 1, &option);
     const struct compiled *u = loaded_compile(l, v, changed);
-    ck_assert_uint_eq(graph_sections(g), sections + 1);
-    ck_assert_uint_eq(l->figures->units.n, units + 1);
+    ck_assert_uint_eq(graph_sections(g), sections + 2);
+    ck_assert_uint_eq(l->figures->units.n, units + 2);
     ck_assert_ptr_eq(u, loaded_compile(l, v, changed));
     ck_assert_ptr_eq(loaded_compile(l, v, "H-4999"),
                      loaded_compile(l, loaded_variant(l, 0, NULL), "H-4999"));
-    ck_assert_uint_eq(graph_sections(g), sections + 1);
+    ck_assert_uint_eq(graph_sections(g), sections + 2);
     loaded_evaluate(l);
     ck_assert_double_eq_tol(figure_value(l->figures, u->main), 0.9 * risk, 1e-13 * risk);
 }
@@ -65,13 +66,13 @@ START_TEST(only_what_changes_is_compiled)
     loaded_text(&l, a, large_register(a), NULL);
     compile_all(&l);
     size_t sections = graph_sections(l.figures->graph), units = l.figures->units.n;
-    ck_assert_uint_eq(units, 2 * HAZARDS); /* a hazard and its element */
+    ck_assert_uint_eq(units, 3 * HAZARDS); /* a hazard, its frequency, and its element */
     double risk = loaded_value(&l, "H-5000.risk");
     ck_assert_double_eq_tol(risk, 0.02 * 501e-6 * 5001, 1e-13 * risk);
     for (size_t i = 0; i < l.model->of[KIND_OPTION].n; i++)
         compile_changed(&l, l.model->of[KIND_OPTION].at[i]->id, risk);
-    ck_assert_uint_eq(graph_sections(l.figures->graph), sections + OPTIONS);
-    ck_assert_uint_eq(l.figures->units.n, units + OPTIONS);
+    ck_assert_uint_eq(graph_sections(l.figures->graph), sections + 2 * OPTIONS);
+    ck_assert_uint_eq(l.figures->units.n, units + 2 * OPTIONS);
     arena_free(a);
 }
 END_TEST

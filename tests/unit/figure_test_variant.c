@@ -22,7 +22,7 @@ struct pair_of_registers {
 static bool has_figures(enum kind k)
 {
     return k == KIND_VALUE || k == KIND_RATE || k == KIND_TYPE || k == KIND_ELEMENT ||
-           k == KIND_SCHEME || k == KIND_HAZARD;
+           k == KIND_SCHEME || k == KIND_HAZARD || k == KIND_COMMON_CAUSE;
 }
 
 static double distance(double x)
@@ -56,6 +56,19 @@ static void compare_units(struct pair_of_registers *p, const struct compiled *u,
 
 /* --- what depends on what --- */
 
+/* An element leads to what it fails together with. */
+static void see_common_causes(struct arena *a, const struct model *m, const char *id,
+                              struct strmap *seen)
+{
+    for (size_t i = 0; i < m->of[KIND_COMMON_CAUSE].n; i++) {
+        const struct object *o = m->of[KIND_COMMON_CAUSE].at[i];
+        const struct common_cause *x = o->data;
+        for (size_t k = 0; k < x->of.n; k++)
+            if (text_equal(x->of.at[k], id) && !strmap_has(seen, o->id))
+                strmap_set(a, seen, o->id, NULL);
+    }
+}
+
 /* Does anything that `o` leads to in `m`, or `o` itself, stand in the option's change? */
 static bool depends(struct arena *a, const struct model *base, const struct model *m,
                     const char *option, const char *root)
@@ -66,6 +79,7 @@ static bool depends(struct arena *a, const struct model *base, const struct mode
         const struct object *o = model_find(m, seen.at[i].key);
         if (merge_touches(base, option, seen.at[i].key))
             return true;
+        see_common_causes(a, m, seen.at[i].key, &seen);
         for (size_t r = 0; o && r < o->refs.n; r++) {
             const struct reference *ref = &o->refs.at[r];
             const struct object *to = model_find(m, ref->id);
