@@ -3,7 +3,7 @@
  *
  * With y = s x, h = start exp(-y) + rate x phi(y), where phi(y) = (1 - exp(-y)) / y and phi(0) = 1:
  * no difference of near numbers, so that the smallest probabilities keep their digits. The same
- * for m. Its slope phi' = (exp(-y) - phi) / y would cancel near 0, where a series takes its place. */
+ * for m. Its slope phi' = (exp(-y) - phi) / y would cancel near 0; a series takes its place. */
 #include "graph/course.h"
 
 #include "math/elementary.h"
@@ -27,18 +27,33 @@ static double phi(double y)
     return y == 0 ? 1 : -math_expm1(-y) / y;
 }
 
-/* phi'(y) = sum over k >= 1 of (-1)^k k y^(k-1) / (k + 1)!; 18 terms reach below rounding for
+/* phi'(y) = sum over k >= 1 of (-1)^k k y^(k-1) / (k + 1)!: these terms reach below rounding for
  * y < 0.5. */
-static double phi_slope(double y)
+static double phi_slope(double y, double decay)
 {
+    static const double terms[] = {
+        -0.5,
+        0.3333333333333333,
+        -0.125,
+        0.03333333333333333,
+        -0.006944444444444444,
+        0.0011904761904761906,
+        -0.00017361111111111112,
+        2.2045855379188714e-05,
+        -2.48015873015873e-06,
+        2.505210838544172e-07,
+        -2.296443268665491e-08,
+        1.9270852604185937e-09,
+        -1.4911969277048643e-10,
+        1.0706029224547743e-11,
+        -7.169215998581078e-13,
+        4.498331606952833e-14,
+    };
     if (!(fabs(y) < 0.5))
-        return (math_exp(-y) - phi(y)) / y;
-    double sum = 0, factor = 1;
-    for (int k = 1; k <= 18; k++) {
-        factor *= -1.0 / (k + 1);
-        sum += k * factor;
-        factor *= y;
-    }
+        return (decay - phi(y)) / y;
+    double sum = 0;
+    for (size_t k = sizeof terms / sizeof *terms; k-- > 0;)
+        sum = sum * y + terms[k];
     return sum;
 }
 
@@ -65,7 +80,9 @@ struct slopes {
 static struct slopes rising_slopes(double start, double rate, double ending, double x)
 {
     double y = (rate + ending) * x, decay = math_exp(-y);
-    double common = rate * x * x * phi_slope(y) - start * x * decay;
+    double common = -start * x * decay;
+    if (rate != 0)
+        common += rate * x * x * phi_slope(y, decay);
     return (struct slopes){decay, x * phi(y) + common, common};
 }
 
