@@ -185,11 +185,12 @@ static void change_at(struct averaging *v, size_t index, size_t lane, double t)
 {
     const struct varying *one = &v->varying[index];
     double since = fmax(t - one->now.origin, 0), age = fmax(t - one->course->born, 0);
-    v->change[index][lane] = course_change(one->x, one->now.fresh, since, age);
-    if (!v->weights)
+    if (!v->weights) {
+        v->change[index][lane] = course_change(one->x, one->now.fresh, since, age);
         return;
+    }
     double slope[COURSE_ARGS];
-    course_change_slopes(one->x, one->now.fresh, since, age, slope);
+    v->change[index][lane] = course_change_slopes(one->x, one->now.fresh, since, age, slope);
     for (size_t k = 0; k < COURSE_ARGS; k++)
         v->slope[index * COURSE_ARGS + k][lane] = slope[k];
 }
