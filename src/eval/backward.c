@@ -50,7 +50,8 @@ static void averaged_backward(struct eval *v, node_id n, const double *weight, d
     struct averaged what = eval_averaged(v, n);
     struct course_values *back = v->course_back.at =
         array_room(v->arena, v->course_back.at, 0, &v->course_back.cap, what.n, sizeof *back);
-    memset(back, 0, what.n * sizeof *back);
+    if (what.n)
+        memset(back, 0, what.n * sizeof *back);
     struct average_slopes out = {.gain = v->arg_back.at, .by = (double(*)[COURSE_ARGS])back};
     average_slopes(v->arena, &what, weight, &out);
     for (size_t i = 0; i < what.n; i++) {

@@ -38,11 +38,11 @@ struct averaging {
     struct varying *varying;
     const struct course **courses; /* of varying */
     struct reach reach;
-    lanes *p, *q;                  /* by variable */
-    lanes *change;                 /* by varying: course_change */
-    lanes *work;                   /* by node of the diagram */
-    size_t n;                      /* lanes in use */
-    lanes weight;                  /* of a point in the average of its window */
+    lanes *p, *q;  /* by variable */
+    lanes *change; /* by varying: course_change */
+    lanes *work;   /* by node of the diagram */
+    size_t n;      /* lanes in use */
+    lanes weight;  /* of a point in the average of its window */
     size_t window[LANES];
     double *results;
     const double *weights; /* slopes: of results; NULL: values only */
@@ -113,8 +113,7 @@ static void set_back(struct averaging *v)
     memset(v->dp, 0, v->what->n * sizeof *v->dp);
     for (size_t k = 0; k < d->n_roots; k++)
         for (size_t i = 0; i < v->n; i++)
-            v->back[d->roots[k]][i] +=
-                v->weight[i] * v->weights[v->window[i] * d->n_roots + k];
+            v->back[d->roots[k]][i] += v->weight[i] * v->weights[v->window[i] * d->n_roots + k];
 }
 
 static void back_lanes(struct averaging *v)
@@ -186,11 +185,12 @@ static void change_at(struct averaging *v, size_t index, size_t lane, double t)
 {
     const struct varying *one = &v->varying[index];
     double since = fmax(t - one->now.origin, 0), age = fmax(t - one->course->born, 0);
-    v->change[index][lane] = course_change(one->x, one->now.fresh, since, age);
-    if (!v->weights)
+    if (!v->weights) {
+        v->change[index][lane] = course_change(one->x, one->now.fresh, since, age);
         return;
+    }
     double slope[COURSE_ARGS];
-    course_change_slopes(one->x, one->now.fresh, since, age, slope);
+    v->change[index][lane] = course_change_slopes(one->x, one->now.fresh, since, age, slope);
     for (size_t k = 0; k < COURSE_ARGS; k++)
         v->slope[index * COURSE_ARGS + k][lane] = slope[k];
 }
@@ -328,7 +328,10 @@ static bool is_sound(const struct averaging *v)
         t = fmax(t, v->what->windows.at[k].to - v->what->windows.at[k].from);
     for (size_t i = 0; i < v->n_varying; i++) {
         const struct varying *one = &v->varying[i];
-        if (t / one->course->every > MOST_RESETS || !isfinite(one->x[COURSE_STANDING]))
+        bool is_reset = one->course->first < INFINITY;
+        if (is_reset && !(t / one->course->every <= MOST_RESETS))
+            return false;
+        if (!isfinite(one->x[COURSE_STANDING]))
             return false;
         for (int k = COURSE_RATE; k < COURSE_ARGS; k++)
             if (!(one->x[k] >= 0 && isfinite(one->x[k])))

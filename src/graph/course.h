@@ -20,9 +20,9 @@ struct stretch course_stretch(const struct course *c, double t);
 /* h or m: the probability but for `standing`, at time `since` behind the origin of the stretch and
  * `age` behind `born`, neither negative. */
 double course_change(const double x[COURSE_ARGS], bool fresh, double since, double age);
-/* slope[i] = d course_change / d x[i]; 0 for the first. */
-void course_change_slopes(const double x[COURSE_ARGS], bool fresh, double since, double age,
-                          double slope[COURSE_ARGS]);
+/* The same, and slope[i] = d course_change / d x[i]; 0 for the first. */
+double course_change_slopes(const double x[COURSE_ARGS], bool fresh, double since, double age,
+                            double slope[COURSE_ARGS]);
 
 /* The rules of the node, which stands for time 0. */
 void course_backward(const struct course *c, const double x[COURSE_ARGS], double w, double *back);

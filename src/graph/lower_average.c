@@ -85,8 +85,7 @@ static void add_piece(struct integrand *f, double at, double end)
     double length = (end - at) / 2, whole = f->window.to - f->window.from;
     for (int half = 0; half < 2; half++)
         for (size_t i = 0; i < rule->n; i++)
-            add_point(f, at + average_grain(f->window),
-                      at + length * (half + rule->nodes[i].at),
+            add_point(f, at + average_grain(f->window), at + length * (half + rule->nodes[i].at),
                       rule->nodes[i].weight * length / whole);
 }
 

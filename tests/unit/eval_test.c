@@ -4,6 +4,7 @@
  * the means), so that it can be built again with moved inputs, for differences. */
 #include "eval/eval.h"
 #include "failmem.h"
+#include "graph/course.h"
 #include "graph/diagram.h"
 #include "random.h"
 
@@ -154,7 +155,7 @@ END_TEST
 
 /* ---- recipes ---- */
 
-enum { N_INPUTS = 5, MOST_STEPS = 60, MOST_ARGS = 8, PER_DIAGRAM = 4 };
+enum { N_INPUTS = 5, MOST_STEPS = 60, MOST_ARGS = 8, PER_DIAGRAM = 4, MOST_TOUCHED = 9 };
 
 struct step {
     enum graph_op op; /* PICK: a diagram over the arguments, and one of its roots */
@@ -163,6 +164,9 @@ struct step {
     double constant[MOST_ARGS];
     bool is_constant[MOST_ARGS];
     const struct diagram *diagram;
+    struct years years;
+    uint32_t of_year[MOST_TOUCHED];
+    struct course course;
 };
 
 struct recipe {
@@ -185,6 +189,13 @@ static node_id build_step(struct built *b, const struct step *s)
             s->is_constant[i] ? graph_const(b->g, s->constant[i], number) : b->place[s->arg[i]];
     if (s->op == OP_PICK)
         return graph_pick(b->g, graph_diagram(b->g, s->diagram, s->n, args), s->root);
+    if (s->op == OP_COURSE)
+        return graph_course(b->g, &s->course, args);
+    if (s->op == OP_YEARS) {
+        struct years years = s->years;
+        years.of_year = s->of_year;
+        return graph_years(b->g, args[0], s->n - 1, args + 1, &years);
+    }
     return graph_op(b->g, s->op, s->n, args);
 }
 
@@ -234,6 +245,25 @@ static void constant(struct step *s, uint32_t i, double x)
     s->constant[i] = x;
 }
 
+static void draw_years(struct random *r, struct step *s)
+{
+    double from = random_uniform(r, 0, 3), to = random_uniform(r, from, 8);
+    s->years = (struct years){from, to, (size_t)(ceil(to) - floor(from)), NULL};
+    for (size_t i = 0; i < s->years.n_years; i++)
+        s->of_year[i] = (uint32_t)random_index(r, s->n - 1);
+}
+
+/* At time 0 half a unit behind a reset at least, where the expansion keeps its digits. */
+static void draw_course(struct random *r, struct step *s)
+{
+    double from = -random_uniform(r, 3, 5);
+    s->course = (struct course){.from = from,
+                                .first = random_index(r, 3) ? from + 1 : INFINITY,
+                                .every = -from - random_uniform(r, 1.5, 1.9),
+                                .born = -random_uniform(r, 0.5, 9),
+                                .fresh = random_index(r, 2)};
+}
+
 /* How many arguments, and which of them are constants. */
 static void draw_arguments(struct random *r, struct step *s)
 {
@@ -251,6 +281,10 @@ static void draw_arguments(struct random *r, struct step *s)
         constant(s, 1, random_index(r, 2) ? 0 : random_uniform(r, 0, 3));
         constant(s, 2, random_uniform(r, 3, 30));
     }
+    if (s->op == OP_YEARS)
+        draw_years(r, s);
+    if (s->op == OP_COURSE)
+        draw_course(r, s);
     if (s->op == OP_PICK) {
         s->n = PER_DIAGRAM;
         s->diagram = draw_diagram(r);
@@ -285,7 +319,7 @@ static bool has_kink(const struct step *s, const double *x)
 /* Whether the operation may be had there: well inside its domain, no cancellation. */
 static bool is_tame(const struct step *s, const double *x)
 {
-    bool probabilities = s->op == OP_PICK || s->op == OP_COMPLEMENT;
+    bool probabilities = s->op == OP_PICK || s->op == OP_COMPLEMENT || s->op == OP_EITHER;
     for (uint32_t i = 0; probabilities && i < s->n; i++)
         if (x[i] > 0.9)
             return false;
@@ -294,6 +328,8 @@ static bool is_tame(const struct step *s, const double *x)
     case OP_EXP: return x[0] < 2.5;
     case OP_LOG: return x[0] > 1.3;
     case OP_ANNUITY: return x[0] < 0.5 && x[1] < x[2];
+    case OP_YEARS: return x[0] < 0.5;
+    case OP_COURSE: return x[COURSE_STANDING] < 0.9 && x[COURSE_LEFT] < 0.9;
     default: return true;
     }
 }
@@ -311,6 +347,7 @@ static const enum graph_op drawn[] = {
     OP_ADD,   OP_SUBTRACT,   OP_MULTIPLY, OP_DIVIDE,  OP_RATIO, OP_NEGATE,
     OP_POWER, OP_COMPLEMENT, OP_SUM,      OP_MIN,     OP_MAX,   OP_EXP,
     OP_LOG,   OP_SQRT,       OP_LOOKUP,   OP_ANNUITY, OP_PICK,  OP_PICK,
+    OP_EITHER, OP_YEARS,     OP_COURSE,   OP_COURSE,
 };
 
 static void draw_step(struct random *r, struct recipe *recipe, struct built *b)
@@ -432,8 +469,9 @@ START_TEST(lowered_graphs_are_equal)
         count_ops(b.g, false, before);
         count_ops(g, true, after);
     }
-    static const enum graph_op macros[] = {OP_SUM,     OP_LOOKUP,  OP_COMPLEMENT,
-                                           OP_ANNUITY, OP_DIAGRAM, OP_PICK};
+    static const enum graph_op macros[] = {OP_SUM,   OP_LOOKUP,  OP_COMPLEMENT,
+                                           OP_ANNUITY, OP_DIAGRAM, OP_PICK,
+                                           OP_EITHER, OP_YEARS,   OP_COURSE};
     for (size_t i = 0; i < sizeof macros / sizeof *macros; i++) {
         ck_assert_msg(before[macros[i]] > 50, "%s: too few", graph_op_info(macros[i])->name);
         ck_assert_msg(after[macros[i]] == 0, "%s: left", graph_op_info(macros[i])->name);

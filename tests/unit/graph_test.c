@@ -47,7 +47,7 @@ START_TEST(every_row_has_its_rules)
 {
     for (int op = 0; op < OP_COUNT; op++) {
         const struct op_rule *rule = op_rule(op);
-        bool many = op == OP_DIAGRAM || op == OP_PICK;
+        bool many = op == OP_DIAGRAM || op == OP_PICK || op == OP_YEARS || op == OP_COURSE;
         ck_assert_msg(rule->lower != NULL, "%s: lower", graph_op_info(op)->name);
         ck_assert_msg(rule->degree != DEGREE_MISSING, "%s: degree", graph_op_info(op)->name);
         ck_assert_msg((rule->unit != NULL) == !is_leaf(op), "%s: unit", graph_op_info(op)->name);
@@ -102,6 +102,10 @@ static const struct example examples[] = {
     {OP_LOOKUP, 7, {0.05, 0.1, 5, 0.25, 40, 0.5, 90}, 5},
     {OP_LOOKUP, 7, {0.7, 0.1, 5, 0.25, 40, 0.5, 90}, 90},
     {OP_LOOKUP, 3, {0.7, 0.1, 5}, 5},
+    {OP_EITHER, 1, {0.385}, 0.385},
+    {OP_EITHER, 3, {0.2, 0.25, 0.5}, 0.7},
+    {OP_EITHER, 2, {1e-20, 3e-20}, 4e-20},
+    {OP_EITHER, 3, {0.25, 1, 0.5}, 1},
     {OP_ANNUITY, 3, {0, 1.25, 7.5}, 6.25},
     {OP_ANNUITY, 3, {0.21, 0, 2}, (1 + 1 / 1.21) / 1.1},      /* middles: 1.21^.5 = 1.1 */
     {OP_ANNUITY, 3, {0.21, 0.25, 0.75}, 0.5 / 1.1},           /* inside one year */
@@ -272,6 +276,148 @@ START_TEST(annuity_refuses_what_has_no_value)
 }
 END_TEST
 
+/* ---- years ---- */
+
+static double years_value(node_id n, const double *x)
+{
+    return graph_node_point(g, n, x);
+}
+
+static long double power_of(double rate, long double t)
+{
+    return expl(t * log1pl(rate));
+}
+
+/* Year by year in long double, with the derivatives; the years are counted from the beginning. */
+START_TEST(years_are_summed_one_by_one)
+{
+    static const double rates[] = {0, 1e-300, 1e-18, 1e-12, 1e-6, 0.0025, 0.04, 1.5, -0.03};
+    static const uint32_t of[] = {0, 1, 2, 2, 0, 1, 1};
+    static const double spans[][3] = {{0, 7, 7}, {0.3, 6.7, 7}, {2.4, 2.6, 1}, {3, 3, 0},
+                                      {-1.5, 2, 4}, {4.25, 6, 2}};
+    for (size_t s = 0; s < sizeof spans / sizeof *spans; s++) {
+        struct years y = {spans[s][0], spans[s][1], (size_t)spans[s][2], of};
+        node_id n = graph_years(g, in(0), 3, (node_id[]){in(1), in(2), in(3)}, &y);
+        for (size_t r = 0; r < sizeof rates / sizeof *rates; r++) {
+            double x[] = {rates[r], 2.385, 1e5, -0.04}, back[4] = {0};
+            long double want = 0, slope = 0, part[3] = {0}, scale = 0;
+            for (size_t i = 0; i < y.n_years; i++) {
+                long double begin = fmax(floor(y.from) + (double)i, y.from);
+                long double end = fmin(floor(y.from) + (double)i + 1, y.to);
+                long double f = (end - begin) * power_of(x[0], -(begin + end) / 2);
+                part[of[i]] += f;
+                want += f * x[1 + of[i]];
+                scale += f * fabs(x[1 + of[i]]);
+                slope -= (begin + end) / 2 * f * x[1 + of[i]] / (1 + (long double)x[0]);
+            }
+            ck_assert_msg(fabsl(years_value(n, x) - want) <= 2e-15L * scale, "%zu, rate %g", s,
+                          x[0]);
+            graph_node_backward(g, n, x, years_value(n, x), 0.5, back);
+            ck_assert(fabsl(back[0] - slope / 2) <= 2e-14L * scale);
+            for (int i = 0; i < 3; i++)
+                ck_assert(fabsl(back[1 + i] - part[i] / 2) <= 4e-15L * (part[i] + 1));
+        }
+    }
+}
+END_TEST
+
+/* The same in each year is an annuity. */
+START_TEST(equal_years_are_an_annuity)
+{
+    static const uint32_t of[25] = {0};
+    struct years y = {0.3, 24.7, 25, of};
+    node_id n = graph_years(g, in(0), 1, (node_id[]){in(1)}, &y);
+    double x[] = {0.04, 2.385}, bad[] = {-1, 2.385};
+    double want = 2.385 * annuity(0.04, 0.3, 24.7);
+    ck_assert(fabs(years_value(n, x) - want) <= 2e-15 * want);
+    ck_assert(isnan(years_value(n, bad)));
+}
+END_TEST
+
+/* ---- courses ---- */
+
+static const struct course tested = {.from = -3.5, .first = -2, .every = 1.5, .born = -7.25};
+
+/* dh/dt = rate (1 - h) - ending h by small steps of fourth order (Runge, Kutta). */
+static double grow(double h, double rate, double ending, double time)
+{
+    enum { STEPS = 2000 };
+    double d = time / STEPS, s = rate + ending;
+    for (int i = 0; i < STEPS; i++) {
+        double a = rate - s * h, b = rate - s * (h + d / 2 * a), c = rate - s * (h + d / 2 * b);
+        h += d / 6 * (a + 2 * b + 2 * c + (rate - s * (h + d * c)));
+    }
+    return h;
+}
+
+START_TEST(courses_follow_their_equation)
+{
+    static const double xs[][5] = {{0.01, 0.3, 2.385, 0.1, 0.02}, {0, 0.04, 0, 0, 0},
+                                   {0.2, 0, 0, 0.4, 0.05},        {0, 0, 5, 0.4, 0},
+                                   {0.5, 3, 7, 1, 2}};
+    /* time, beginning of its stretch, whether before the first reset */
+    static const double times[][3] = {{-3.25, -3.5, 1}, {-2, -2, 0}, {-0.75, -2, 0},
+                                      {-0.5, -0.5, 0},  {0, -0.5, 0}, {9.9, 8.5, 0}};
+    for (int fresh = 0; fresh < 2; fresh++)
+        for (size_t i = 0; i < sizeof xs / sizeof *xs; i++)
+            for (size_t k = 0; k < sizeof times / sizeof *times; k++) {
+                struct course c = tested;
+                c.fresh = fresh;
+                const double *x = xs[i];
+                double start = fresh && times[k][2] != 0 ? 0 : x[3];
+                double h = grow(start, x[1], x[2], times[k][0] - times[k][1]);
+                double m = grow(0, x[4], x[2], times[k][0] - c.born);
+                double want = 1 - (1 - x[0]) * (1 - h) * (1 - m);
+                double got = course_at(&c, x, times[k][0]);
+                ck_assert_msg(fabs(got - want) <= 1e-11, "%zu, %zu: %.17g, not %.17g", i, k, got,
+                              want);
+            }
+}
+END_TEST
+
+START_TEST(small_courses_keep_their_digits)
+{
+    double x[] = {1e-20, 1e-12, 1e-9, 1e-15, 1e-13};
+    struct course c = tested;
+    double want = 1e-20 + 1e-12 * 0.5 * (1 - 0.5e-9 / 2) + 1e-15 * (1 - 0.5e-9) + 
+                  7.25e-13 * (1 - 3.6254e-9);
+    ck_assert(fabs(course_at(&c, x, 0) - want) <= 1e-11 * want);
+    c.first = INFINITY; /* 1 - exp(-1e-12 * 3.5) */
+    double alone[] = {0, 1e-12, 0, 0, 0};
+    long double exact = -expm1l(-3.5e-12L);
+    ck_assert(fabsl(course_at(&c, alone, 0) - exact) <= 4e-16L * exact);
+}
+END_TEST
+
+/* Against fourth-order differences, also where s x is near 0 and about 0.5, where the series
+ * ends. */
+START_TEST(slopes_of_courses_match_differences)
+{
+    static const double xs[][5] = {{0.01, 0.3, 2.385, 0.1, 0.02}, {0.01, 1e-3, 1e-3, 0.2, 1e-3},
+                                   {0.02, 0.4, 0.599, 0.01, 0.05}, {0.02, 0.4, 0.601, 0.01, 0.05},
+                                   {0.5, 3, 7, 0.9, 2}};
+    node_id args[] = {in(0), in(1), in(2), in(3), in(4)}, n = graph_course(g, &tested, args);
+    for (size_t i = 0; i < sizeof xs / sizeof *xs; i++) {
+        double back[5] = {0}, x[5];
+        graph_node_backward(g, n, xs[i], graph_node_point(g, n, xs[i]), 2.385, back);
+        for (int k = 0; k < 5; k++) {
+            double y[4], h = 1e-3 * xs[i][k];
+            for (int j = 0; j < 4; j++) {
+                memcpy(x, xs[i], sizeof x);
+                x[k] += (j < 2 ? j - 2 : j - 1) * h;
+                y[j] = course_at(&tested, x, 0);
+            }
+            double want = 2.385 * (y[0] - 8 * y[1] + 8 * y[2] - y[3]) / (12 * h);
+            ck_assert_msg(fabs(back[k] - want) <= 1e-9 * fabs(want) + 1e-13 / h, "%zu, %d: %.12g, "
+                          "not %.12g", i, k, back[k], want);
+        }
+    }
+    double still[5] = {0}, back[5] = {0};
+    graph_node_backward(g, n, still, 0, 1, back);
+    ck_assert(back[0] == 1 && back[1] == 0.5 && back[2] == 0 && back[3] == 1 && back[4] == 7.25);
+}
+END_TEST
+
 /* ---- dimensions ---- */
 
 static bool fits(enum graph_op op, size_t n, const node_id *args, struct dim want)
@@ -311,6 +457,12 @@ START_TEST(unit_rules)
     FITS(LOOKUP, money, m, bound, e), FITS(LOOKUP, money, m, bound, e, bound, e);
     CLASHES(LOOKUP, m, bound, e, bound, x), CLASHES(LOOKUP, x, bound, e), CLASHES(LOOKUP, m, m, e);
     CLASHES(LOOKUP, m, bound, e, bound);
+    node_id per = graph_input(g, 4, 1, per_metre);
+    FITS(EITHER, number, x, x), CLASHES(EITHER, x, m);
+    FITS(YEARS, money, x, e, e), CLASHES(YEARS, m, e), CLASHES(YEARS, x, e, x);
+    FITS(COURSE, number, x, per, per, x, per), CLASHES(COURSE, x, per, x, x, per);
+    CLASHES(COURSE, per, per, per, x, per), CLASHES(COURSE, x, per, per, x, x);
+    CLASHES(COURSE, x, per, per, per, per), FITS(COURSE, number, x, x, x, x, x);
     FITS(DIAGRAM, number, x, x), CLASHES(DIAGRAM, x, m), CLASHES(PICK, x);
 #undef ARGS
 #undef FITS
@@ -358,6 +510,37 @@ START_TEST(apart_by_number)
     graph_section_end(g);
     graph_section_begin(g, 1);
     ck_assert_uint_eq(graph_apart(g, sum, 7), sum);
+}
+END_TEST
+
+/* What stands in a table tells nodes apart, and its copy outlives the caller's. */
+START_TEST(equal_tables_are_one)
+{
+    node_id x = in(1), p[] = {x, x, x, x, x};
+    uint32_t of[] = {0, 0, 1};
+    struct years y = {0.5, 2.5, 3, of};
+    node_id first = graph_years(g, x, 2, p, &y);
+    ck_assert_uint_eq(graph_years(g, x, 2, p, &y), first);
+    of[1] = 1;
+    ck_assert_uint_ne(graph_years(g, x, 2, p, &y), first);
+    ck_assert_uint_eq(graph_years_of(g, first)->of_year[1], 0);
+    ck_assert_uint_ne(graph_apart(g, first, 1), first);
+    ck_assert_ptr_eq(graph_years_of(g, graph_apart(g, first, 1)), graph_years_of(g, first));
+    struct course c = tested;
+    node_id course = graph_course(g, &c, p);
+    ck_assert_uint_eq(graph_course(g, &c, p), course);
+    c.fresh = true;
+    ck_assert_uint_ne(graph_course(g, &c, p), course);
+    c.first = INFINITY;
+    node_id never = graph_course(g, &c, p);
+    c.every = 77; /* of no meaning */
+    ck_assert_uint_eq(graph_course(g, &c, p), never);
+    for (uint32_t i = 0; i < 500; i++) {
+        c = (struct course){.from = -(double)i, .first = 0, .every = 1 + i};
+        ck_assert_ptr_eq(graph_course_of(g, graph_course(g, &c, p)),
+                         graph_course_of(g, graph_course(g, &c, (node_id[]){x, x, x, x, x})));
+    }
+    ck_assert_double_eq(graph_course_of(g, course)->every, 1.5);
 }
 END_TEST
 
@@ -552,6 +735,58 @@ START_TEST(equal_diagrams_are_one)
 }
 END_TEST
 
+START_TEST(windows_tell_diagrams_apart)
+{
+    node_id x = in(1), c = graph_course(g, &tested, (node_id[]){x, x, x, x, x}), args[] = {c, x, c};
+    struct window at[] = {{0, 1}, {1, 2.5}};
+    struct windows two = {2, at}, one = {1, at}, none = {0, NULL};
+    const struct diagram *d = or_and();
+    node_id plain = graph_diagram(g, d, 3, args), over = graph_diagram_over(g, d, 3, args, &two);
+    ck_assert_uint_eq(graph_diagram_over(g, d, 3, args, NULL), plain);
+    ck_assert_uint_eq(graph_diagram_over(g, d, 3, args, &none), plain);
+    ck_assert_uint_ne(over, plain);
+    ck_assert_uint_ne(graph_diagram_over(g, d, 3, args, &one), over);
+    ck_assert_uint_eq(graph_diagram_over(g, d, 3, args, &two), over);
+    at[1].to = 3; /* the table is a copy */
+    ck_assert_uint_ne(graph_diagram_over(g, d, 3, args, &two), over);
+    ck_assert_uint_eq(graph_windows_of(g, over).n, 2);
+    ck_assert_double_eq(graph_windows_of(g, over).at[1].to, 2.5);
+    ck_assert_uint_eq(graph_windows_of(g, plain).n, 0);
+    node_id pick = graph_pick_in(g, over, 1, 0);
+    uint32_t window = 9, root = 9;
+    graph_pick_of(g, pick, &window, &root);
+    ck_assert(window == 1 && root == 0 && graph_at(g, pick)->extra == 2);
+    ck_assert_uint_eq(graph_pick(g, over, 1), graph_pick_in(g, over, 0, 1));
+    graph_pick_of(g, graph_pick(g, plain, 1), &window, &root);
+    ck_assert(window == 0 && root == 1);
+}
+END_TEST
+
+START_TEST(dump_tells_what_stands_in_tables)
+{
+    node_id p = graph_input(g, 8, 1e-7, number), args[] = {p, p, p, p, p};
+    struct course c = {.from = -1, .first = INFINITY, .fresh = true};
+    graph_course(g, &tested, args);
+    node_id never = graph_course(g, &c, args);
+    struct window at[] = {{0, 1}, {1, 2.5}};
+    node_id changing[] = {never, p, p};
+    node_id d = graph_diagram_over(g, or_and(), 3, changing, &(struct windows){2, at});
+    graph_pick_in(g, d, 1, 1);
+    struct years y = {0.5, 2, 2, (uint32_t[]){1, 0}};
+    graph_years(g, p, 2, args, &y);
+    struct text out;
+    text_init(&out, arena);
+    graph_dump(&out, g);
+    ck_assert_str_eq(text_str(&out),
+                     "0 input #8 1e-7\n"
+                     "1 course (0; 0; 0; 0; 0) from -3.5 first -2 every 1.5 born -7.25\n"
+                     "2 course (0; 0; 0; 0; 0) from -1 born 0 fresh\n"
+                     "3 diagram #0 (2; 0; 0) over 0 1; 1 2.5\n"
+                     "4 pick (3) window 1 root 1\n"
+                     "5 years (0; 0; 0) from 0.5 to 2 of 1 0\n");
+}
+END_TEST
+
 START_TEST(many_diagrams_keep_their_numbers)
 {
     enum { N = 300 };
@@ -620,7 +855,15 @@ static Suite *graph_suite(void)
     tcase_add_test(t, annuity_is_the_sum_over_years);
     tcase_add_test(t, annuity_slope_is_the_sum_over_years);
     tcase_add_test(t, annuity_refuses_what_has_no_value);
+    tcase_add_test(t, years_are_summed_one_by_one);
+    tcase_add_test(t, equal_years_are_an_annuity);
+    tcase_add_test(t, courses_follow_their_equation);
+    tcase_add_test(t, small_courses_keep_their_digits);
+    tcase_add_test(t, slopes_of_courses_match_differences);
     tcase_add_test(t, unit_rules);
+    tcase_add_test(t, equal_tables_are_one);
+    tcase_add_test(t, windows_tell_diagrams_apart);
+    tcase_add_test(t, dump_tells_what_stands_in_tables);
     tcase_add_test(t, equal_nodes_are_one);
     tcase_add_test(t, apart_by_number);
     tcase_add_test(t, many_equal_nodes_are_one);
