@@ -193,6 +193,8 @@ void element_instants(const struct figures *f, const struct element *x, struct m
         if (t->next != DAY_NONE)
             c.from = fmin(horizon_years(s, t->next) - every, 0);
     }
+    c.from = fmin(c.from, 0); /* what comes later is taken to be there from the start */
+    c.born = fmin(c.born, 0);
     if (t)
         c.first = m->dated ? first_test(f, t, c.from, every) : every;
     m->tested = t != NULL;

@@ -23,8 +23,9 @@
  * So they need not be listed to be counted, and their number may be beyond any list.
  *
  * The product of a set is that of the probabilities of its members (1 of the empty
- * set): the probability that all of them are true, if they are independent. Sets are compared by their products as real numbers, exactly, not
- * as they come out when rounded factor by factor. */
+ * set): the probability that all of them are true, if they are independent. Sets are
+ * compared by their products as real numbers, exactly, not as they come out when rounded
+ * factor by factor. */
 #ifndef GRAPH_CUTS_H
 #define GRAPH_CUTS_H
 

@@ -82,8 +82,8 @@ static void check_record(struct checking *c, const struct demand_record *r, cons
                  "there are more failures than demands; the demands include the failures");
 }
 
-/* Days in order: in service, known to be sound, last test, next test. */
-static void check_days(struct checking *c, const struct object *o)
+/* Days in order: in service, known to be sound, last test, next test; tests that end. */
+static void check_times(struct checking *c, const struct object *o)
 {
     const struct element *x = o->data;
     const struct node *test = node_get(o->node, "test");
@@ -92,6 +92,9 @@ static void check_days(struct checking *c, const struct object *o)
                  "\"when-known\" lies before \"since\"");
     if (!x->test)
         return;
+    if (x->test->takes && expr_constant(x->test->takes->expr) > expr_constant(x->test->every->expr))
+        diag_add(c->diags, node_get(test, "takes")->place,
+                 "a test cannot take longer than the time from one test to the next");
     if (x->test->last != DAY_NONE && x->since != DAY_NONE && x->test->last < x->since)
         diag_add(c->diags, node_get(test, "last")->place,
                  "the last test lies before \"since\", when the element came into service");
@@ -120,7 +123,7 @@ void check_element(struct checking *c, const struct object *o)
         check_record(c, r, node_get(o->node, "per-demand"));
     if (!is_element)
         return;
-    check_days(c, o);
+    check_times(c, o);
     check_repair(c, o);
 }
 

@@ -45,8 +45,8 @@ static const char *const involved[] = {
     "out-of-service", "exercised", "test",     "unwanted",
     "steady",         "disables",  "trips-on", NULL};
 /* Must agree with other fields: only where somebody puts them. */
-static const char *const agreed[] = {"since",       "when-known",         "next",
-                                     "revealed-by", "breaker-failure-of", NULL};
+static const char *const agreed[] = {
+    "takes", "since", "when-known", "next", "revealed-by", "breaker-failure-of", NULL};
 
 static bool is_wanted(struct generator *g, const struct field *f)
 {
@@ -451,6 +451,7 @@ static void add_dated_elements(struct generator *g)
     struct node *m = make_map(g), *test = make_map(g), *by = make_list(g);
     struct node *section = (struct node *)node_get(g->root, "elements");
     put_text(g, test, "every", "4 a");
+    put_text(g, test, "takes", "3 h");
     put_text(g, test, "last", "2021-05-06");
     put_text(g, test, "next", "2027-02-03");
     put_node(g, m, "test", test);
