@@ -50,20 +50,12 @@ void eval_diagram(struct eval *v, node_id n, double *results)
     diagram_evaluate(d, p, q, ROOM(v, &v->work, d->n_nodes + 2), results);
 }
 
-/* The place of a DIAGRAM's results; NaN when one of them is not finite. */
-static double diagram_place(struct eval *v, node_id n)
+size_t eval_n_results(const struct graph *g, node_id n)
 {
-    size_t n_roots = graph_diagram_of(v->g, n)->n_roots, place = v->results.n;
-    array_reserve(v->arena, &v->results, n_roots);
-    eval_diagram(v, n, v->results.at + place);
-    for (size_t k = 0; k < n_roots; k++)
-        if (!isfinite(v->results.at[place + k]))
-            return NAN;
-    v->results.n += n_roots;
-    return (double)place;
+    return graph_diagram_of(g, n)->n_roots;
 }
 
-static double node_value(struct eval *v, node_id n)
+double eval_node(struct eval *v, node_id n, size_t place)
 {
     const struct graph_node *node = graph_at(v->g, n);
     switch (node->op) {
@@ -71,12 +63,31 @@ static double node_value(struct eval *v, node_id n)
     case OP_INPUT:
         return node->constant;
     case OP_DIAGRAM:
-        return diagram_place(v, n);
+        eval_diagram(v, n, v->results.at + place);
+        return (double)place;
     case OP_PICK:
         return v->results.at[(size_t)v->value.at[*graph_args(v->g, n)] + node->extra];
     default:
         return graph_point(node->op, node->n, eval_gather(v, n));
     }
+}
+
+/* The place of a DIAGRAM's results; NaN when one of them is not finite. */
+static double diagram_place(struct eval *v, node_id n)
+{
+    size_t count = eval_n_results(v->g, n), place = v->results.n;
+    array_reserve(v->arena, &v->results, count);
+    double x = eval_node(v, n, place);
+    for (size_t k = 0; k < count; k++)
+        if (!isfinite(v->results.at[place + k]))
+            return NAN;
+    v->results.n += count;
+    return x;
+}
+
+static double node_value(struct eval *v, node_id n)
+{
+    return graph_at(v->g, n)->op == OP_DIAGRAM ? diagram_place(v, n) : eval_node(v, n, 0);
 }
 
 ohmen_status eval_point(struct eval *v, node_id *culprit, ohmen_error *e)
