@@ -279,7 +279,7 @@ static ohmen_status integrate_or_sample(struct knots *k, size_t *sets, ohmen_err
 ohmen_status knot_integrate(struct knots *k, node_id n, size_t *sets, ohmen_error *e)
 {
     bool is_diagram = graph_at(k->v->g, n)->op == OP_DIAGRAM;
-    k->n_results = is_diagram ? eval_n_results(k->v->g, n) : 1;
+    k->n_results = is_diagram ? eval_results(k->v, n) : 1;
     const uint32_t *curved = graph_curved(k->v->g, n, &k->n_inputs);
     find_inputs(k, curved);
     find_steps(k, n, curved, k->n_inputs);

@@ -127,8 +127,8 @@ static double value_at_means(struct means *m, node_id n, size_t set)
     double *value = m->v->value.at;
     size_t place = m->v->results.n;
     if (graph_at(m->v->g, n)->op == OP_DIAGRAM) {
-        array_reserve(m->v->arena, &m->v->results, eval_n_results(m->v->g, n));
-        m->v->results.n += eval_n_results(m->v->g, n);
+        array_reserve(m->v->arena, &m->v->results, eval_results(m->v, n));
+        m->v->results.n += eval_results(m->v, n);
     }
     for (size_t i = 0; i < m->dressed.n; i++)
         value[m->dressed.at[i].node] = mean_in(m, curved_of(m, m->dressed.at[i].node), set);

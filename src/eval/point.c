@@ -50,9 +50,9 @@ void eval_diagram(struct eval *v, node_id n, double *results)
     diagram_evaluate(d, p, q, ROOM(v, &v->work, d->n_nodes + 2), results);
 }
 
-size_t eval_n_results(const struct graph *g, node_id n)
+size_t eval_results(const struct eval *v, node_id n)
 {
-    return graph_diagram_of(g, n)->n_roots;
+    return graph_diagram_of(v->g, n)->n_roots;
 }
 
 double eval_node(struct eval *v, node_id n, size_t place)
@@ -75,7 +75,7 @@ double eval_node(struct eval *v, node_id n, size_t place)
 /* The place of a DIAGRAM's results; NaN when one of them is not finite. */
 static double diagram_place(struct eval *v, node_id n)
 {
-    size_t count = eval_n_results(v->g, n), place = v->results.n;
+    size_t count = eval_results(v, n), place = v->results.n;
     array_reserve(v->arena, &v->results, count);
     double x = eval_node(v, n, place);
     for (size_t k = 0; k < count; k++)

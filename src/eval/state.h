@@ -33,7 +33,7 @@ const double *eval_gather(struct eval *v, node_id n);
 void eval_diagram(struct eval *v, node_id n, double *results);
 
 /* How many results DIAGRAM node n has. */
-size_t eval_n_results(const struct graph *g, node_id n);
+size_t eval_results(const struct eval *v, node_id n);
 
 /* Computes node n from the values of its arguments, as eval_point does, and returns its value,
  * finite or not: an INPUT's mean; of a DIAGRAM `place`, where its results go into v->results,
