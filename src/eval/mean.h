@@ -8,12 +8,27 @@
  * The remaining nodes ("knots") are integrated over their curved inputs (graph_curved), with
  * everything below them evaluated anew at each point and the other inputs held at their means:
  *   up to 2 inputs   quadrature: a discrete input by its atoms, any other by the trapezoidal rule
- *                    in z, x = quantile(normal(z)) (exponentially convergent for smooth x)
+ *                    in z, x = quantile(normal(z)) (exponentially convergent for smooth x:
+ *                    Trefethen, Weideman, SIAM Review 56 (2014) 385), in steps of 1, 1/2, 1/4 ...
+ *                    until the last halving changed nothing by more than 1e-6 of the mean of its
+ *                    absolute value
  *   more             16 independent latin hypercubes of MEAN_STRATA points each, from streams that
  *                    are keyed by each input's name, so that the same input has the same values in
  *                    every knot; the standard error is that of the 16 means
  *
- * Invariant: the same graph and names give the same bytes, whatever else the graph holds. */
+ * What quadrature reaches (computed; tests hold it to closed forms): 1e-9 relative where function
+ * and quantile are smooth, mostly 1e-12. One input, steps down to 1/512: 2e-6 at a kink (min, max,
+ * a triangular input), 4e-4 of the height of a jump (lookup). Two inputs, steps down to 1/4: 1e-3
+ * at a kink; where the last two steps are further apart than 1e-3, as at most jumps, the knot is
+ * sampled as if it had more inputs. Pairs of points with z1^2 + z2^2 > 144 are left out.
+ *
+ * What a sample reaches: for moderate spread the printed error holds (95 % intervals of Student's t
+ * with 15 degrees of freedom hold the mean in 94 % of cases). It is too small where the mean hangs
+ * on what 1024 points hardly meet: products of several inputs with error factors of 3 and more that
+ * enter twice, or combinations of atoms with a probability below 1e-3.
+ *
+ * Invariant: the same graph and names give the same bytes, whatever else the graph holds. Names
+ * of different inputs differ. */
 #ifndef EVAL_MEAN_H
 #define EVAL_MEAN_H
 
@@ -25,10 +40,11 @@
 /* What the graph does not know of its inputs; `input` is the number of graph_input. */
 struct mean_source {
     void *ctx;
-    /* The least x with P(X <= x) >= p; q = 1 - p. OHMEN_COMPUTE where there is none. */
+    /* The least x with P(X <= x) >= p; q = 1 - p, both in (0, 1), the smaller one exact (as in
+     * dist_quantile), down to 1e-33. OHMEN_COMPUTE where there is none. */
     ohmen_status (*quantile)(void *ctx, uint32_t input, double p, double q, double *x,
                              ohmen_error *e);
-    /* Atoms of a discrete input; 0: it is continuous. */
+    /* Atoms of a discrete input, which live as long as the means; 0: it is continuous. */
     size_t (*atoms)(void *ctx, uint32_t input, const double **values, const double **probabilities);
     /* A name that does not depend on what else is in the graph. */
     const char *(*name)(void *ctx, uint32_t input);
@@ -37,9 +53,12 @@ struct mean_source {
 enum mean_method { MEAN_EXACT, MEAN_QUADRATURE, MEAN_SAMPLE };
 
 struct means;
+/* Lives in `a`; evaluation and source are borrowed. */
 struct means *means_new(struct arena *a, struct eval *v, const struct mean_source *source);
 
-/* Means of all nodes that have a value (eval_point was called); incremental as that is.
+/* Means of all nodes that have a value (eval_point was called); incremental as that is. The
+ * values of the evaluation change in between and are the same at the end: not to be read
+ * meanwhile. Where no node is of degree 2 nothing is computed or kept.
  * A knot that is not finite at some point of the integration is OHMEN_COMPUTE; *culprit as in
  * eval_point. */
 ohmen_status means_update(struct means *m, node_id *culprit, ohmen_error *e);

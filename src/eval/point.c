@@ -85,20 +85,7 @@ void eval_diagram(struct eval *v, node_id n, double *results)
     diagram_evaluate(d, v->args.at, v->q.at, ROOM(v, &v->work, d->n_nodes + 2), results);
 }
 
-/* The place of a DIAGRAM's results; NaN when one of them is not finite. */
-static double diagram_place(struct eval *v, node_id n)
-{
-    size_t n_results = eval_results(v, n), place = v->results.n;
-    array_reserve(v->arena, &v->results, n_results);
-    eval_diagram(v, n, v->results.at + place);
-    for (size_t k = 0; k < n_results; k++)
-        if (!isfinite(v->results.at[place + k]))
-            return NAN;
-    v->results.n += n_results;
-    return (double)place;
-}
-
-static double node_value(struct eval *v, node_id n)
+double eval_node(struct eval *v, node_id n, size_t place)
 {
     const struct graph_node *node = graph_at(v->g, n);
     switch (node->op) {
@@ -106,12 +93,31 @@ static double node_value(struct eval *v, node_id n)
     case OP_INPUT:
         return node->constant;
     case OP_DIAGRAM:
-        return diagram_place(v, n);
+        eval_diagram(v, n, v->results.at + place);
+        return (double)place;
     case OP_PICK:
         return v->results.at[(size_t)v->value.at[*graph_args(v->g, n)] + node->extra];
     default:
         return graph_node_point(v->g, n, eval_gather(v, n));
     }
+}
+
+/* The place of a DIAGRAM's results; NaN when one of them is not finite. */
+static double diagram_place(struct eval *v, node_id n)
+{
+    size_t count = eval_results(v, n), place = v->results.n;
+    array_reserve(v->arena, &v->results, count);
+    double x = eval_node(v, n, place);
+    for (size_t k = 0; k < count; k++)
+        if (!isfinite(v->results.at[place + k]))
+            return NAN;
+    v->results.n += count;
+    return x;
+}
+
+static double node_value(struct eval *v, node_id n)
+{
+    return graph_at(v->g, n)->op == OP_DIAGRAM ? diagram_place(v, n) : eval_node(v, n, 0);
 }
 
 ohmen_status eval_point(struct eval *v, node_id *culprit, ohmen_error *e)

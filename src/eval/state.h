@@ -51,4 +51,9 @@ void eval_diagram(struct eval *v, node_id n, double *results);
  * v->courses and v->course_values. */
 struct averaged eval_averaged(struct eval *v, node_id n);
 
+/* Computes node n from the values of its arguments, as eval_point does, and returns its value,
+ * finite or not: an INPUT's mean; of a DIAGRAM `place`, where its results go into v->results,
+ * which is long enough. */
+double eval_node(struct eval *v, node_id n, size_t place);
+
 #endif

@@ -18,6 +18,8 @@
 #include "base/text.h"
 #include "math/dim.h"
 
+#include <stdbool.h>
+
 typedef uint32_t node_id;
 #define NODE_NONE UINT32_MAX
 
@@ -240,6 +242,11 @@ int graph_degree(const struct graph *g, node_id root);
 const uint32_t *graph_curved(const struct graph *g, node_id root, size_t *n);
 /* All uncertain inputs of `root`, in rising order: linear ones and curved ones. */
 const uint32_t *graph_uncertain(const struct graph *g, node_id root, size_t *n);
+/* Whether the mean of `root` may differ from what its rule makes of the means of its arguments:
+ * it is curved in an uncertain argument, or a product of arguments that have an uncertain input
+ * in common (of a DIAGRAM: it has an argument that is a COURSE with uncertain rates, too). False
+ * where the rule is linear, however curved the arguments are. */
+bool graph_bends(const struct graph *g, node_id root);
 
 /* One line a node, for people and tests: number, op, arguments, constant, dim (see
  * dump.c for examples). */

@@ -1,0 +1,289 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Integration of one node. The nodes between it and its curved inputs are found once; then, at
+ * each point, these are evaluated anew in the values of the evaluation itself, where everything
+ * else stands at its point value, and in the end once more with the inputs at their means, which
+ * gives the old values back. Owns its scratch arrays.
+ *
+ * Invariant: no sum depends on numbers of nodes or inputs; two inputs are taken in the order of
+ * their names. */
+#include "eval/knot.h"
+
+#include <math.h>
+#include <string.h>
+
+/* When a level of the rule changes no result by more than this part of its size, it is the last:
+ * the error of smooth functions is squared from level to level, or nearly. */
+#define AGREED 1e-6
+
+/* The last level, by the number of inputs. Two inputs that have not come as near as this to one
+ * another then are sampled: there is a jump, or a kink that weighs. */
+static const size_t last_level[3] = {0, SPREAD_LEVELS - 1, 2};
+#define NEAR 1e-3
+
+/* A pair of points of less weight, of 1 in the middle, is left out: z1^2 + z2^2 > 12^2, further
+ * out than either rule goes. */
+#define LEAST_WEIGHT 5.4e-32
+
+#define NO_INPUT UINT32_MAX
+
+/* ---- what depends on the inputs ---- */
+
+/* The place of an input among the curved ones, which rise. */
+static uint32_t place_of(const uint32_t *curved, size_t n, uint32_t input)
+{
+    size_t low = 0, high = n;
+    while (low < high) {
+        size_t middle = low + (high - low) / 2;
+        if (curved[middle] < input)
+            low = middle + 1;
+        else
+            high = middle;
+    }
+    return low < n && curved[low] == input ? (uint32_t)low : NO_INPUT;
+}
+
+static void begin_search(struct knots *k)
+{
+    k->steps.n = 0;
+    k->search++;
+    size_t size = graph_size(k->v->g), had = k->seen.n;
+    if (had >= size)
+        return;
+    array_reserve(k->arena, &k->seen, size - had);
+    array_zero(k->seen.at + had, (size - had) * sizeof *k->seen.at);
+    k->seen.n = size;
+}
+
+/* Goes down to a node, unless it was met or is certain. True when it is known to depend. */
+static bool descend(struct knots *k, node_id n)
+{
+    if (k->seen.at[n] >> 1 == k->search)
+        return k->seen.at[n] & 1;
+    k->seen.at[n] = 2 * k->search;
+    if (graph_degree(k->v->g, n) > 0)
+        *array_push(k->arena, &k->stack) = (struct knot_frame){.node = n};
+    return false;
+}
+
+static void leave(struct knots *k, struct knot_frame f, uint32_t input)
+{
+    k->stack.n--;
+    if (!f.depends && input == NO_INPUT)
+        return;
+    k->seen.at[f.node] |= 1;
+    *array_push(k->arena, &k->steps) = (struct knot_step){f.node, input};
+    if (k->stack.n)
+        array_last(&k->stack)->depends = true;
+}
+
+/* The nodes from the curved inputs up to `root`, arguments before what uses them. */
+static void find_steps(struct knots *k, node_id root, const uint32_t *curved, size_t n_curved)
+{
+    const struct graph *g = k->v->g;
+    begin_search(k);
+    descend(k, root);
+    while (k->stack.n) {
+        struct knot_frame *f = array_last(&k->stack);
+        const struct graph_node *node = graph_at(g, f->node);
+        if (f->next < node->n) {
+            node_id arg = graph_args(g, f->node)[f->next++];
+            size_t at = k->stack.n - 1;
+            if (descend(k, arg))
+                k->stack.at[at].depends = true;
+            continue;
+        }
+        leave(k, *f, node->op == OP_INPUT ? place_of(curved, n_curved, node->extra) : NO_INPUT);
+    }
+}
+
+/* ---- one point ---- */
+
+/* The node at the inputs k->x, or at their means. */
+static void evaluate(const struct knots *k, bool at_means)
+{
+    double *value = k->v->value.at;
+    for (size_t i = 0; i < k->steps.n; i++) {
+        struct knot_step s = k->steps.at[i];
+        bool is_diagram = graph_at(k->v->g, s.node)->op == OP_DIAGRAM;
+        if (s.input != NO_INPUT && !at_means)
+            value[s.node] = k->x.at[s.input];
+        else
+            value[s.node] = eval_node(k->v, s.node, is_diagram ? (size_t)value[s.node] : 0);
+    }
+}
+
+/* Adds weight times the results at the inputs k->x to sum; false when one is not finite. */
+static bool add_point(struct knots *k, double weight, double *sum)
+{
+    evaluate(k, false);
+    node_id root = array_last(&k->steps)->node;
+    const double *value = &k->v->value.at[root];
+    if (graph_at(k->v->g, root)->op == OP_DIAGRAM)
+        value = k->v->results.at + (size_t)*value;
+    for (size_t i = 0; i < k->n_results; i++) {
+        if (!isfinite(value[i]))
+            return false;
+        sum[i] += weight * value[i];
+        k->size.at[i] += weight * fabs(value[i]);
+    }
+    k->weight += weight;
+    return true;
+}
+
+/* ---- quadrature ---- */
+
+/* The points that the level has more than the one before. */
+static bool add_line(struct knots *k, size_t level)
+{
+    const struct spread *a = k->inputs.at[0];
+    for (size_t i = level ? a->n[level - 1] : 0; i < a->n[level]; i++) {
+        k->x.at[0] = a->x[i];
+        if (!add_point(k, a->weight[i], k->mean.at))
+            return false;
+    }
+    return true;
+}
+
+/* The same of two inputs; the first is the one whose name comes first. */
+static bool add_plane(struct knots *k, size_t level)
+{
+    size_t first = strcmp(k->inputs.at[0]->name, k->inputs.at[1]->name) > 0;
+    const struct spread *a = k->inputs.at[first], *b = k->inputs.at[1 - first];
+    size_t a_had = level ? a->n[level - 1] : 0, b_had = level ? b->n[level - 1] : 0;
+    for (size_t i = 0; i < a->n[level]; i++)
+        for (size_t j = i < a_had ? b_had : 0; j < b->n[level]; j++) {
+            double weight = a->weight[i] * b->weight[j];
+            k->x.at[first] = a->x[i];
+            k->x.at[1 - first] = b->x[j];
+            if (weight >= LEAST_WEIGHT && !add_point(k, weight, k->mean.at))
+                return false;
+        }
+    return true;
+}
+
+/* How much the level has changed the means, as a part of their sizes: the most of all results.
+ * The means of now become those of before. */
+static double change(struct knots *k)
+{
+    double most = 0;
+    for (size_t i = 0; i < k->n_results; i++) {
+        double mean = k->mean.at[i] / k->weight, size = k->size.at[i] / k->weight;
+        if (size > 0)
+            most = fmax(most, fabs(mean - k->before.at[i]) / size);
+        k->before.at[i] = mean;
+    }
+    return most;
+}
+
+static ohmen_status find_rules(struct knots *k, size_t level, bool *are_discrete, ohmen_error *e)
+{
+    *are_discrete = true;
+    for (size_t i = 0; i < k->n_inputs; i++) {
+        ohmen_status status = spread_rule(&k->spreads, k->inputs.at[i], level, e);
+        if (status != OHMEN_OK)
+            return status;
+        *are_discrete = *are_discrete && k->inputs.at[i]->is_discrete;
+    }
+    return OHMEN_OK;
+}
+
+static ohmen_status no_mean(const struct knots *k, ohmen_error *e)
+{
+    node_id n = array_last(&k->steps)->node;
+    return error_set(e, OHMEN_COMPUTE, "node %u (%s) of the calculation has no finite mean",
+                     (unsigned)n, graph_op_info(graph_at(k->v->g, n)->op)->name);
+}
+
+/* Level by level; *reached says how far the last two are apart. */
+static ohmen_status integrate(struct knots *k, double *reached, ohmen_error *e)
+{
+    bool is_done = false;
+    for (size_t level = 0; !is_done && level <= last_level[k->n_inputs]; level++) {
+        bool are_discrete;
+        ohmen_status status = find_rules(k, level, &are_discrete, e);
+        if (status != OHMEN_OK)
+            return status;
+        if (!(k->n_inputs == 1 ? add_line(k, level) : add_plane(k, level)))
+            return no_mean(k, e);
+        *reached = change(k);
+        if (are_discrete)
+            *reached = 0;
+        is_done = are_discrete || (level > 0 && *reached <= AGREED);
+    }
+    for (size_t i = 0; i < k->n_results; i++)
+        k->mean.at[i] = k->before.at[i];
+    return OHMEN_OK;
+}
+
+/* ---- sample ---- */
+
+static ohmen_status sample(struct knots *k, ohmen_error *e)
+{
+    for (size_t i = 0; i < k->n_inputs; i++) {
+        ohmen_status status = spread_sample(&k->spreads, k->inputs.at[i], e);
+        if (status != OHMEN_OK)
+            return status;
+    }
+    for (size_t i = 0; i < MEAN_SETS * MEAN_STRATA; i++) {
+        for (size_t a = 0; a < k->n_inputs; a++)
+            k->x.at[a] = k->inputs.at[a]->sample[i];
+        double *sum = k->mean.at + i / MEAN_STRATA * k->n_results;
+        if (!add_point(k, 1.0 / MEAN_STRATA, sum))
+            return no_mean(k, e);
+    }
+    return OHMEN_OK;
+}
+
+/* ---- one knot ---- */
+
+static void find_inputs(struct knots *k, const uint32_t *curved)
+{
+    k->inputs.n = k->x.n = 0;
+    array_reserve(k->arena, &k->x, k->n_inputs);
+    for (size_t i = 0; i < k->n_inputs; i++)
+        *array_push(k->arena, &k->inputs) = spreads_find(&k->spreads, curved[i]);
+}
+
+static double *cleared(struct arena *a, double *at, size_t *cap, size_t n)
+{
+    at = array_room(a, at, 0, cap, n, sizeof *at);
+    array_zero(at, n * sizeof *at);
+    return at;
+}
+
+static void clear_sums(struct knots *k, size_t sets)
+{
+    size_t n = k->n_results;
+    k->mean.at = cleared(k->arena, k->mean.at, &k->mean.cap, sets * n);
+    k->size.at = cleared(k->arena, k->size.at, &k->size.cap, n);
+    k->before.at = cleared(k->arena, k->before.at, &k->before.cap, n);
+    k->weight = 0;
+}
+
+/* By quadrature where there are few inputs and it gets there, by a sample elsewhere. */
+static ohmen_status integrate_or_sample(struct knots *k, size_t *sets, ohmen_error *e)
+{
+    double reached = INFINITY;
+    *sets = 1;
+    if (k->n_inputs <= 2) {
+        clear_sums(k, 1);
+        ohmen_status status = integrate(k, &reached, e);
+        if (status != OHMEN_OK || k->n_inputs == 1 || reached <= NEAR)
+            return status;
+    }
+    *sets = MEAN_SETS;
+    clear_sums(k, MEAN_SETS);
+    return sample(k, e);
+}
+
+ohmen_status knot_integrate(struct knots *k, node_id n, size_t *sets, ohmen_error *e)
+{
+    bool is_diagram = graph_at(k->v->g, n)->op == OP_DIAGRAM;
+    k->n_results = is_diagram ? eval_results(k->v, n) : 1;
+    const uint32_t *curved = graph_curved(k->v->g, n, &k->n_inputs);
+    find_inputs(k, curved);
+    find_steps(k, n, curved, k->n_inputs);
+    ohmen_status status = integrate_or_sample(k, sets, e);
+    evaluate(k, true);
+    return status;
+}
