@@ -123,8 +123,8 @@ static void method_note(struct job *j, figure_id id)
                     "The mean over what is unknown, by a sample of %d points: its standard error "
                     "is %s. At the means of what is unknown it would be %s: something unknown "
                     "enters more than once, or in a curve.",
-                    MEAN_SETS * MEAN_STRATA,
-                    value_words(j, id, figure_error(j->figures, id)), at_means);
+                    MEAN_SETS * MEAN_STRATA, value_words(j, id, figure_error(j->figures, id)),
+                    at_means);
 }
 
 struct explain_request {
