@@ -3,7 +3,7 @@
  *
  * Sections do not nest: whatever an object reads is compiled before its own section is
  * opened. */
-#include "figure/compile.h"
+#include "figure/states.h"
 
 #include "evidence/posterior.h"
 
@@ -302,7 +302,14 @@ ohmen_status compile_references(struct figures *f, const struct variant *v, cons
 static ohmen_status compile_object(struct figures *f, const struct variant *v,
                                    const struct object *o, struct compiled **out, ohmen_error *e)
 {
-    ohmen_status status = compile_references(f, v, o, e);
+    const struct combinations *c = NULL;
+    ohmen_status status = OHMEN_OK;
+    if (o->kind == KIND_HAZARD && v->stem->varying.n)
+        status = states_of(f, v, o->id, &c, e);
+    if (status == OHMEN_OK && c && c->list.at[0].n)
+        return compile_mean_hazard(f, v, o, c, out, e);
+    if (status == OHMEN_OK)
+        status = compile_references(f, v, o, e);
     if (status == OHMEN_OK && o->kind == KIND_HAZARD)
         status = compile_frequency_of(f, v, o, e);
     if (status != OHMEN_OK)
@@ -315,6 +322,7 @@ static ohmen_status compile_object(struct figures *f, const struct variant *v,
     case KIND_SCHEME: return compile_scheme(f, v, o, out, e);
     case KIND_HAZARD: return compile_hazard(f, v, o, out, e);
     case KIND_COMMON_CAUSE: return compile_group(f, v, o, out, e);
+    case KIND_STATE: return compile_state(f, v, o, out, e);
     default:
         return error_set(e, OHMEN_COMPUTE, "\"%s\" is %s, which has no figures in this version",
                          o->id, kinds_words(f->arena, KIND_BIT(o->kind)));

@@ -102,7 +102,8 @@ struct making {
 };
 /* Its own kind, else that of its type: index into element_kinds, or -1. */
 int element_kind(const struct model *m, const struct element *x);
-bool element_is_breaker(const struct model *m, const struct element *x);
+/* Does it only carry out the trip command: a breaker or its trip circuit? */
+bool element_is_tripped(const struct model *m, const struct element *x);
 /* Sets tested, when and dated of a making as the element's documents say. */
 void element_instants(const struct figures *f, const struct element *x, struct making *m);
 /* A common cause and its members. */
@@ -129,7 +130,7 @@ void wiring_init(struct wiring *w, struct figures *f, const struct variant *v,
 void wiring_order(struct wiring *w, const char *id);
 /* "works" as a function of the elements' failures. */
 bfun wiring_works(struct wiring *w, const char *id);
-/* The same with every breaker taken as sound: the protection operates. */
+/* The same with breakers and trip circuits taken as sound: the protection operates. */
 bfun wiring_trips(struct wiring *w, const char *id);
 bfun wiring_sees(struct wiring *w, const char *row);
 /* The arguments of the diagram, in order of variables; those of `sees` and of what the hazard

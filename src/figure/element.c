@@ -71,10 +71,11 @@ int element_kind(const struct model *m, const struct element *x)
     return x->kind >= 0 || !t ? x->kind : t->kind;
 }
 
-bool element_is_breaker(const struct model *m, const struct element *x)
+bool element_is_tripped(const struct model *m, const struct element *x)
 {
     int kind = element_kind(m, x);
-    return kind >= 0 && text_equal(element_kinds[kind], "breaker");
+    return kind >= 0 && (text_equal(element_kinds[kind], "breaker") ||
+                         text_equal(element_kinds[kind], "trip-circuit"));
 }
 
 /* --- types --- */

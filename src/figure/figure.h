@@ -2,10 +2,14 @@
 /* Figures: the named numbers of a register, compiled into one calculation graph.
  *
  * A figure is (object, property, qualifiers, variant). Its name is made on demand:
- *     OBJECT.PROPERTY[.QUALIFIER[.QUALIFIER]][@OPTION[+OPTION...]]
- * docs/figures.md lists the properties. Behind @ stands the variant *projected* on the
- * object: only those options that change something that the object depends on. So a
+ *     OBJECT.PROPERTY[.QUALIFIER[.QUALIFIER]][@CHANGE[+CHANGE...]]
+ * docs/figures.md lists the properties. A change is an OPTION, an operating state
+ * STATE=VALUE, or one that was made up: [NAME]. Behind @ stands the variant *projected* on
+ * the object: only those changes that reach something that the object depends on. So a
  * figure that no change reaches is the base figure, and is computed once.
+ *
+ * A hazard that operating states reach is a mean over them (compile_states.c): a unit of
+ * its own that reads one unit of the hazard for each combination of states.
  *
  * Every object is compiled into a section of its own, once for each projected variant,
  * when it is first asked for. After compiling, figures_evaluate fills in the values. */
@@ -121,12 +125,29 @@ struct figure {
     const char *text;   /* of a leaf: how it was written ("90 % within ..."), or NULL */
 };
 
-/* A set of options and the model that they make. */
+enum change_sort { CHANGE_OPTION, CHANGE_STATE, CHANGE_MADE_UP };
+
+struct change {
+    enum change_sort sort;
+    const char *name;          /* as in names of figures: "FIT", "T2-OUT=a-out", "[test at 2 a]" */
+    const char *state, *value; /* of a state */
+    const struct node *node;   /* bound; NULL: changes nothing, or of an option */
+};
+
+/* A set of changes and the model that they make. */
 struct variant {
-    size_t n;
-    const char *const *options; /* in byte order */
+    size_t n; /* changes: options, then states, then those made up, each in
+                                     byte order of names */
+    const struct change *changes;
+    size_t n_options;
+    const char *const *options; /* names of the first changes */
     const struct model *model;
-    struct strmap *reached; /* for each option: ids of what its change reaches */
+    struct strmap *reached; /* for each change: ids of what it reaches by references */
+    struct figures *figures;
+    const struct variant *stem; /* without the states; itself where there are none */
+    struct object_list varying; /* of a stem: states that vary */
+    struct strmap *combined;    /* hazard -> struct combinations (states.h) */
+    struct strmap *projections; /* id -> struct variant, where states vary */
 };
 
 /* One compiled object. */
@@ -136,9 +157,9 @@ struct compiled {
     const struct variant *variant; /* projected */
     section_id section;
     figure_id first;
-    size_t n;       /* figures */
-    void *exports;  /* struct hazard_exports, element_exports, group_exports, ... by kind */
-    figure_id main; /* value, rate, fails, risk */
+    size_t n;          /* figures */
+    void *exports;     /* struct hazard_exports, element_exports, group_exports, ... by kind */
+    figure_id main;    /* value, rate, fails, risk */
     uint32_t n_inputs; /* uncertain inputs of its own */
     const struct compiled *also; /* another unit with figures of the same object, or NULL */
 };
@@ -156,14 +177,15 @@ struct figures {
     ARRAY(struct compiled *) units;
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
     struct strmap variants;        /* "A+B" -> struct variant */
+    struct strmap made_up;         /* "[NAME]" -> struct change */
     struct strmap used_by;         /* id -> struct objects: what refers to it, in the base */
     struct strmap groups;          /* element -> struct groups: its common causes in the base */
     size_t n_indexed;              /* common causes of the base that are in `groups` */
     ARRAY(const struct quantity *) inputs;
     ARRAY(const char *) input_names; /* "VH-51A#0": the same under all variants */
-    ARRAY(figure_id) of_node;     /* first figure of a node */
-    ARRAY(const char *) literals; /* text of a CONST node, or NULL */
-    uint32_t n_stated;            /* expressions that documents state, each a node of its own */
+    ARRAY(figure_id) of_node;        /* first figure of a node */
+    ARRAY(const char *) literals;    /* text of a CONST node, or NULL */
+    uint32_t n_stated;               /* expressions that documents state, each a node of its own */
     unsigned depth;
 };
 
@@ -178,11 +200,27 @@ ohmen_status figures_new(struct arena *a, const struct model *base, const char *
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e);
 
+/* The variant with an operating state fixed besides: "T2-OUT=a-out". OHMEN_UNKNOWN when there
+ * is no such state, or another of its object is fixed already; OHMEN_COMPUTE as above, and for
+ * a state that is unknown (`is`), which this version does not evaluate. */
+ohmen_status figures_variant_in(struct figures *f, const struct variant *base, const char *state,
+                                const struct variant **out, ohmen_error *e);
+
+/* The variant with a change besides that stands in no register, in the form of an option's
+ * change. In names of figures it is [NAME]; NAME is not empty and has no `[` or `]`
+ * (OHMEN_UNKNOWN), and one name is one change throughout (OHMEN_UNKNOWN otherwise).
+ * OHMEN_COMPUTE for a change that cannot be read, and as figures_variant. */
+ohmen_status figures_variant_with(struct figures *f, const struct variant *base, const char *name,
+                                  const struct node *change, const struct variant **out,
+                                  ohmen_error *e);
+
 /* Does the variant change anything that this object depends on? */
 bool variant_reaches(const struct variant *v, const char *id);
 
-/* Compiles an object (value, rate, type, element, scheme, hazard) under a variant and
- * everything that it depends on. OHMEN_COMPUTE names what this version cannot evaluate. */
+/* Compiles an object (value, rate, type, element, scheme, hazard, state that varies) under a
+ * variant and everything that it depends on. A hazard is the mean over those operating states
+ * that the variant does not fix; every other object is what the variant says, states that are
+ * not fixed left out (but the frequency of a hazard, where it asks for that, is the mean). OHMEN_COMPUTE names what this version cannot evaluate. */
 ohmen_status figures_compile(struct figures *f, const struct variant *v, const char *id,
                              const struct compiled **out, ohmen_error *e);
 
@@ -208,7 +246,7 @@ figure_id compiled_figure(const struct figures *f, const struct compiled *u, enu
 /* --- hazards --- */
 
 /* A scheme works, or does not; with `sees_row` also: and its function sees the fault; with
- * `tripped_by` also: and the scheme of that name, its breakers taken as sound, works (and, with
+ * `tripped_by` also: and the scheme of that name, its breakers and trip circuits taken as sound, works (and, with
  * `tripped_row`, sees the fault). */
 struct condition {
     const struct condition *before;
@@ -243,7 +281,18 @@ struct event {
     struct behaviour fails;
 };
 
+/* A hazard in one combination of operating states. */
+struct hazard_state {
+    const char *name;            /* "T1-OUT=none+T2-OUT=a-out" */
+    double share;                /* of time, as evaluated when it was compiled */
+    const struct compiled *unit; /* NULL: there is no such hazard in it */
+};
+
+/* Of a mean over operating states: diagram, variables and ends are those of the state with the
+ * greatest share that has the hazard (the first of equals); all else is the mean. */
 struct hazard_exports {
+    size_t n_states; /* 0: no operating state reaches the hazard, or all are fixed */
+    struct hazard_state *states;
     const struct diagram *diagram;
     node_id node; /* DIAGRAM */
     size_t n_events;

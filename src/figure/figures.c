@@ -93,7 +93,7 @@ static const char *compiled_key(struct figures *f, const char *id, const char *p
     text_init(&t, f->arena);
     text_printf(&t, part ? "%s/%s@" : "%s@", id, part);
     for (size_t i = 0; i < v->n; i++)
-        text_printf(&t, "%s%s", i ? "+" : "", v->options[i]);
+        text_printf(&t, "%s%s", i ? "+" : "", v->changes[i].name);
     return text_str(&t);
 }
 
@@ -231,7 +231,7 @@ const char *figure_name(const struct figures *f, struct arena *a, figure_id id)
     if (g->q2)
         text_printf(&t, ".%s", g->q2);
     for (size_t i = 0; i < u->variant->n; i++)
-        text_printf(&t, "%s%s", i ? "+" : "@", u->variant->options[i]);
+        text_printf(&t, "%s%s", i ? "+" : "@", u->variant->changes[i].name);
     return text_str(&t);
 }
 

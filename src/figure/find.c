@@ -2,13 +2,28 @@
 /* Finding a figure by its name, and what this version does not use. */
 #include <string.h>
 
-#include "figure/compile.h"
+#include "figure/states.h"
 
-/* "ID.rest@A+B" cut into its parts. */
+/* "ID.rest@A+S=x+[name]" cut into its parts. */
 struct name_parts {
     const char *id, *rest; /* rest: "risk.slow" */
-    ARRAY(const char *) options;
+    ARRAY(const char *) options, states, made_up;
 };
+
+/* The change that starts at `from`; where it ends. What is made up may have any sign in it. */
+static const char *cut_change(struct arena *a, const char *from, struct name_parts *p)
+{
+    const char *end = *from == '[' ? strchr(from, ']') : NULL;
+    size_t n = end ? (size_t)(end + 1 - from) : strcspn(from, "+");
+    const char *name = arena_strn(a, from, n);
+    if (end)
+        *array_push(a, &p->made_up) = name;
+    else if (strchr(name, '='))
+        *array_push(a, &p->states) = name;
+    else
+        *array_push(a, &p->options) = name;
+    return from + n;
+}
 
 static void cut_name(struct arena *a, const char *name, struct name_parts *p)
 {
@@ -20,11 +35,24 @@ static void cut_name(struct arena *a, const char *name, struct name_parts *p)
         p->id = arena_strn(a, head, (size_t)(dot - head));
         p->rest = dot + 1;
     }
-    while (at) {
-        const char *from = at + 1;
-        at = strchr(from, '+');
-        *array_push(a, &p->options) = at ? arena_strn(a, from, (size_t)(at - from)) : from;
+    while (at && *at)
+        at = cut_change(a, at + 1, p);
+}
+
+/* The variant that a name means. */
+static ohmen_status named_variant(struct figures *f, const struct name_parts *p,
+                                  const struct variant **v, ohmen_error *e)
+{
+    ohmen_status status = figures_variant(f, p->options.n, p->options.at, v, e);
+    for (size_t i = 0; status == OHMEN_OK && i < p->made_up.n; i++) {
+        const struct change *c = strmap_get(&f->made_up, p->made_up.at[i]);
+        if (!c)
+            return error_set(e, OHMEN_UNKNOWN, "nobody made up the change %s", p->made_up.at[i]);
+        status = variant_made_up(f, *v, c, v, e);
     }
+    for (size_t i = 0; status == OHMEN_OK && i < p->states.n; i++)
+        status = figures_variant_in(f, *v, p->states.at[i], v, e);
+    return status;
 }
 
 static ohmen_status unknown_object(struct figures *f, const char *id, ohmen_error *e)
@@ -41,6 +69,28 @@ static const char *without_variant(struct arena *a, const char *name)
 {
     const char *at = strchr(name, '@');
     return at ? arena_strn(a, name, (size_t)(at - name)) : name;
+}
+
+static bool is_mean(const struct compiled *u)
+{
+    return u->object && u->object->kind == KIND_HAZARD &&
+           ((const struct hazard_exports *)u->exports)->n_states;
+}
+
+/* Ends and what belongs to them are those of one state. */
+static ohmen_status unknown_of_mean(struct figures *f, const struct compiled *u, const char *rest,
+                                    ohmen_error *e)
+{
+    const struct hazard_exports *x = u->exports;
+    const struct compiled *first = NULL;
+    for (size_t i = 0; i < x->n_states && !first; i++)
+        first = x->states[i].unit;
+    const char *name = figure_name(f, f->arena, first->main);
+    return error_set(
+        e, OHMEN_UNKNOWN,
+        "\"%s\" has no figure \"%s\": it is a mean over operating states, whose figures "
+        "have their state in the name, as %s",
+        u->id, rest, name);
 }
 
 ohmen_status compiled_find(struct figures *f, const struct compiled *u, const char *rest,
@@ -61,6 +111,8 @@ ohmen_status compiled_find(struct figures *f, const struct compiled *u, const ch
     if (!*rest && u->main != FIGURE_NONE)
         return error_set(e, OHMEN_UNKNOWN, "\"%s\" is an object; its main figure is %s", u->id,
                          figure_name(f, f->arena, u->main));
+    if (is_mean(u))
+        return unknown_of_mean(f, u, rest, e);
     return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no figure \"%s\"%s", u->id, rest,
                      nearest_hint(f->arena, &near));
 }
@@ -71,7 +123,7 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
     const struct variant *v;
     const struct compiled *u;
     cut_name(f->arena, name, &p);
-    ohmen_status status = figures_variant(f, p.options.n, p.options.at, &v, e);
+    ohmen_status status = named_variant(f, &p, &v, e);
     if (status != OHMEN_OK)
         return status;
     if (text_equal(p.id, REGISTER_ID))
@@ -105,12 +157,13 @@ const struct compiled *figures_settings(struct figures *f)
 struct looking {
     struct arena *arena;
     struct text keys;
+    bool unknown; /* a state that is unknown: its changes are not used either */
 };
 
 static enum walk look_at_field(void *ctx, const struct visit *v)
 {
     struct looking *l = ctx;
-    if (!(v->field->flags & LATER))
+    if (!(v->field->flags & LATER) && !(l->unknown && v->field->type == FIELD_ROWS))
         return WALK_INTO;
     text_printf(&l->keys, "%s%s", l->keys.n ? ", " : "", v->path);
     return WALK_PAST;
@@ -120,6 +173,7 @@ static enum walk look_at_field(void *ctx, const struct visit *v)
 static const char *unused_keys(struct arena *a, const struct object *o)
 {
     struct looking l = {.arena = a};
+    l.unknown = o->kind == KIND_STATE && ((const struct state *)o->data)->is.n;
     struct walker w = {.ctx = &l, .enter = look_at_field};
     text_init(&l.keys, a);
     walk_table(a, kinds[o->kind].table, o->node, o->data, &w);
@@ -134,14 +188,14 @@ static void add_unused(struct arena *a, const char *lead, const struct object *o
         *array_push(a, out) = arena_printf(a, "%s%s: %s", lead, o->id, keys);
 }
 
-/* What an option brings into the register and this version does not use. */
-static void unused_in_option(struct arena *a, const struct model *m, const char *option,
-                             struct unused *out)
+/* What a change brings into the register and this version does not use. */
+static void unused_in_change(struct arena *a, const struct model *m, const struct model_change *c,
+                             const char *id, struct unused *out)
 {
     struct diags quiet;
     diags_init(&quiet, a);
-    const struct model *v = model_variant(a, m, 1, &option, &quiet);
-    const char *lead = arena_printf(a, "%s, in its change of ", option);
+    const struct model *v = model_change(a, m, 1, c, &quiet);
+    const char *lead = arena_printf(a, "%s, in its change of ", id);
     for (size_t i = 0; v && i < v->by_id.n; i++) {
         const struct object *o = v->by_id.at[i].value;
         const struct object *before = o ? model_find(m, o->id) : NULL;
@@ -150,12 +204,26 @@ static void unused_in_option(struct arena *a, const struct model *m, const char 
     }
 }
 
+static void unused_in_state(struct arena *a, const struct model *m, const struct object *o,
+                            struct unused *out)
+{
+    for (size_t i = 0; i < ((const struct state *)o->data)->varies.n; i++) {
+        struct model_change c = model_state_change(a, o, i);
+        unused_in_change(a, m, &c, c.name, out);
+    }
+}
+
 void figures_unused(struct arena *a, const struct model *m, struct unused *out)
 {
     for (int k = 0; k < KIND_COUNT; k++)
         for (size_t i = 0; i < m->of[k].n; i++) {
-            add_unused(a, "", m->of[k].at[i], out);
-            if (k == KIND_OPTION)
-                unused_in_option(a, m, m->of[k].at[i]->id, out);
+            const struct object *o = m->of[k].at[i];
+            add_unused(a, "", o, out);
+            if (k == KIND_STATE)
+                unused_in_state(a, m, o, out);
+            if (k != KIND_OPTION)
+                continue;
+            struct model_change c = model_option_change(m, o->id);
+            unused_in_change(a, m, &c, o->id, out);
         }
 }

@@ -165,7 +165,7 @@ static bfun function_of(struct wiring *w, const char *id, bool trips)
     const struct object *o = model_find(model_of(w), id);
     struct strmap *known = trips ? &w->trips : &w->works;
     if (o->kind == KIND_ELEMENT)
-        return trips && element_is_breaker(model_of(w), o->data) ? BFUN_TRUE : element_works(w, id);
+        return trips && element_is_tripped(model_of(w), o->data) ? BFUN_TRUE : element_works(w, id);
     uintptr_t found = (uintptr_t)strmap_get(known, id);
     if (found)
         return (bfun)(found - 1);
@@ -271,7 +271,7 @@ void wiring_text(struct text *t, const struct wording *w, const char *id, bool b
     const struct object *o = model_find(w->variant->model, id);
     if (o->kind != KIND_ELEMENT)
         structure_text(t, w, ((const struct scheme *)o->data)->works, bare);
-    else if (w->trips && element_is_breaker(w->variant->model, o->data))
+    else if (w->trips && element_is_tripped(w->variant->model, o->data))
         text_add(t, "certain");
     else
         element_text(t, w, id, bare);

@@ -1,28 +1,33 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Variants, what each of their options reaches, and their projection on an object.
+/* Variants, what each of their changes reaches, and their projection on an object.
  *
- * Invariant: an object is reached by an option when a chain of references that compute
- * leads from the object, as the variant leaves it, to something that the option
- * changes. Variants are made once each and kept. */
-#include "figure/compile.h"
+ * Invariant: an object is reached by a change when a chain of references that compute
+ * leads from the object, as the variant leaves it, to something that is changed; a hazard
+ * also by what it is reached by in one of its operating states, and by the states that it
+ * is a mean over. Variants are made once each and kept. */
+#include "figure/states.h"
 
 #include <stdlib.h>
+#include <string.h>
 
-static int by_text(const void *p, const void *q)
+static int by_sort_and_name(const void *p, const void *q)
 {
-    return text_compare(*(const char *const *)p, *(const char *const *)q);
+    const struct change *a = p, *b = q;
+    if (a->sort != b->sort)
+        return a->sort < b->sort ? -1 : 1;
+    return text_compare(a->name, b->name);
 }
 
-static const char *variant_key(struct arena *a, size_t n, const char *const *options)
+static const char *variant_key(struct arena *a, size_t n, const struct change *changes)
 {
     struct text t;
     text_init(&t, a);
     for (size_t i = 0; i < n; i++)
-        text_printf(&t, "%s%s", i ? "+" : "", options[i]);
+        text_printf(&t, "%s%s", i ? "+" : "", changes[i].name);
     return text_str(&t);
 }
 
-static bool computes(const struct reference *r, const struct object *to)
+bool reference_computes(const struct reference *r, const struct object *to)
 {
     return !r->trace && !r->later && to && kinds[to->kind].computes;
 }
@@ -36,7 +41,7 @@ static void index_uses(struct figures *f)
             struct object *o = m->of[k].at[i];
             for (size_t r = 0; r < o->refs.n; r++) {
                 const struct reference *ref = &o->refs.at[r];
-                if (!computes(ref, model_find(m, ref->id)))
+                if (!reference_computes(ref, model_find(m, ref->id)))
                     continue;
                 struct objects *users = strmap_get(&f->used_by, ref->id);
                 if (!users) {
@@ -97,42 +102,112 @@ static void reach_members(struct reaching *w, const struct object *o)
         reach(w, x->of.at[i]);
 }
 
-static void find_reached(struct figures *f, struct variant *v, size_t option)
+static struct model_change laid_over(const struct figures *f, const struct change *c)
 {
-    struct reaching w = {.f = f, .variant = v, .reached = &v->reached[option]};
-    const struct option *o = model_get(f->base, KIND_OPTION, v->options[option]);
-    for (size_t s = 0; s < o->change->n; s++) {
-        const struct pair *section = &o->change->pairs[s];
-        for (size_t i = 0; i < section->value->n; i++)
-            reach(&w, section->value->pairs[i].key);
+    static const struct place nowhere = {.file = "register", .path = "register"};
+    static const char *const words[] = {"option", "state", "change"};
+    if (c->sort == CHANGE_OPTION)
+        return model_option_change(f->base, c->name);
+    return (struct model_change){words[c->sort], c->name, c->node,
+                                 c->node ? c->node->place : nowhere};
+}
+
+static void find_reached(struct figures *f, struct variant *v, size_t i)
+{
+    struct reaching w = {.f = f, .variant = v, .reached = &v->reached[i]};
+    const struct node *node = laid_over(f, &v->changes[i]).node;
+    for (size_t s = 0; node && s < node->n; s++) {
+        const struct pair *section = &node->pairs[s];
+        for (size_t k = 0; k < section->value->n; k++)
+            reach(&w, section->value->pairs[k].key);
     }
-    for (size_t i = 0; i < w.todo.n; i++) {
-        reach_users(&w, w.todo.at[i]);
-        reach_members(&w, model_find(f->base, w.todo.at[i]));
-        reach_members(&w, model_find(v->model, w.todo.at[i]));
+    for (size_t k = 0; k < w.todo.n; k++) {
+        reach_users(&w, w.todo.at[k]);
+        reach_members(&w, model_find(f->base, w.todo.at[k]));
+        reach_members(&w, model_find(v->model, w.todo.at[k]));
     }
 }
 
-static ohmen_status make_variant(struct figures *f, size_t n, const char *const *options,
-                                 struct variant **out, ohmen_error *e)
+static const struct model *make_model(struct figures *f, size_t n, const struct change *changes,
+                                      ohmen_error *e)
 {
     struct diags d;
     diags_init(&d, f->arena);
-    const struct model *m = model_variant(f->arena, f->base, n, options, &d);
-    if (!m) {
-        diags_sort(&d);
-        return error_set(e, OHMEN_COMPUTE, "%s", d.list.n ? d.list.at[0].text : "the options fail");
-    }
+    struct model_change *all = NEW_ARRAY(f->arena, n, struct model_change);
+    for (size_t i = 0; i < n; i++)
+        all[i] = laid_over(f, &changes[i]);
+    const struct model *m = model_change(f->arena, f->base, n, all, &d);
+    if (m)
+        return m;
+    diags_sort(&d);
+    error_set(e, OHMEN_COMPUTE, "%s", d.list.n ? d.list.at[0].text : "the changes fail");
+    return NULL;
+}
+
+static ohmen_status make_variant(struct figures *f, size_t n, const struct change *changes,
+                                 struct variant **out, ohmen_error *e)
+{
+    const struct model *m = make_model(f, n, changes, e);
+    if (!m)
+        return OHMEN_COMPUTE;
     if (n && !f->used_by.n)
         index_uses(f);
     struct variant *v = NEW(f->arena, struct variant);
-    *v = (struct variant){.n = n, .options = options, .model = m};
+    const char **options = NEW_ARRAY(f->arena, n, const char *);
+    *v = (struct variant){
+        .n = n, .changes = changes, .options = options, .model = m, .figures = f, .stem = v};
+    while (v->n_options < n && changes[v->n_options].sort == CHANGE_OPTION) {
+        options[v->n_options] = changes[v->n_options].name;
+        v->n_options++;
+    }
     v->reached = NEW_ARRAY(f->arena, n, struct strmap);
     for (size_t i = 0; i < n; i++)
         find_reached(f, v, i);
+    v->combined = NEW(f->arena, struct strmap);
+    v->projections = NEW(f->arena, struct strmap);
     *out = v;
     return OHMEN_OK;
 }
+
+static ohmen_status variant_of(struct figures *f, size_t n, const struct change *changes,
+                               const struct variant **out, ohmen_error *e);
+
+/* The same without the states, which knows what states there are. */
+static ohmen_status find_stem(struct figures *f, struct variant *v, ohmen_error *e)
+{
+    struct change *others = NEW_ARRAY(f->arena, v->n, struct change);
+    size_t n = 0;
+    for (size_t i = 0; i < v->n; i++)
+        if (v->changes[i].sort != CHANGE_STATE)
+            others[n++] = v->changes[i];
+    if (n < v->n)
+        return variant_of(f, n, others, &v->stem, e);
+    model_varying(f->arena, v->model, &v->varying);
+    return OHMEN_OK;
+}
+
+/* The variant of some changes, in any order, none of them twice. */
+static ohmen_status variant_of(struct figures *f, size_t n, const struct change *changes,
+                               const struct variant **out, ohmen_error *e)
+{
+    struct change *sorted = arena_copy(f->arena, changes, n * sizeof *changes);
+    if (n > 1)
+        qsort(sorted, n, sizeof *sorted, by_sort_and_name);
+    const char *key = variant_key(f->arena, n, sorted);
+    struct variant *v = strmap_get(&f->variants, key);
+    if (!v) {
+        ohmen_status status = make_variant(f, n, sorted, &v, e);
+        if (status == OHMEN_OK)
+            status = find_stem(f, v, e);
+        if (status != OHMEN_OK)
+            return status;
+        strmap_set(f->arena, &f->variants, key, v);
+    }
+    *out = v;
+    return OHMEN_OK;
+}
+
+/* --- options --- */
 
 static ohmen_status unknown_option(struct figures *f, const char *id, ohmen_error *e)
 {
@@ -147,47 +222,258 @@ static ohmen_status unknown_option(struct figures *f, const char *id, ohmen_erro
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e)
 {
-    const char **sorted = NEW_ARRAY(f->arena, n, const char *);
+    struct change *changes = NEW_ARRAY(f->arena, n, struct change);
     for (size_t i = 0; i < n; i++) {
         if (!model_get(f->base, KIND_OPTION, options[i]))
             return unknown_option(f, options[i], e);
-        sorted[i] = options[i];
+        for (size_t k = 0; k < i; k++)
+            if (text_equal(options[i], options[k]))
+                return error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is named twice", options[i]);
+        changes[i] = (struct change){.sort = CHANGE_OPTION, .name = options[i]};
     }
-    qsort(sorted, n, sizeof *sorted, by_text);
-    for (size_t i = 0; i + 1 < n; i++)
-        if (text_equal(sorted[i], sorted[i + 1]))
-            return error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is named twice", sorted[i]);
-    const char *key = variant_key(f->arena, n, sorted);
-    struct variant *v = strmap_get(&f->variants, key);
-    if (!v) {
-        ohmen_status status = make_variant(f, n, sorted, &v, e);
-        if (status != OHMEN_OK)
-            return status;
-        strmap_set(f->arena, &f->variants, key, v);
+    return variant_of(f, n, changes, out, e);
+}
+
+/* --- states and made-up changes --- */
+
+static ohmen_status variant_and(struct figures *f, const struct variant *base,
+                                const struct change *more, const struct variant **out,
+                                ohmen_error *e)
+{
+    struct change *changes = NEW_ARRAY(f->arena, base->n + 1, struct change);
+    for (size_t i = 0; i < base->n; i++)
+        changes[i] = base->changes[i];
+    changes[base->n] = *more;
+    return variant_of(f, base->n + 1, changes, out, e);
+}
+
+ohmen_status variant_in_state(struct figures *f, const struct variant *base,
+                              const struct object *state, size_t value, const struct variant **out,
+                              ohmen_error *e)
+{
+    const struct state *s = state->data;
+    struct model_change m = model_state_change(f->arena, state, value);
+    struct change c = {CHANGE_STATE, m.name, state->id, s->varies.keys[value], m.node};
+    return variant_and(f, base, &c, out, e);
+}
+
+static ohmen_status unknown_state(struct figures *f, const struct model *m, const char *id,
+                                  ohmen_error *e)
+{
+    struct nearest near;
+    nearest_init(&near, id);
+    for (; m; m = m->below)
+        for (size_t i = 0; i < m->by_id.n; i++) {
+            const struct object *o = m->by_id.at[i].value;
+            if (o && o->kind == KIND_STATE)
+                nearest_offer(&near, o->id);
+        }
+    return error_set(e, OHMEN_UNKNOWN, "there is no state \"%s\"%s", id,
+                     nearest_hint(f->arena, &near));
+}
+
+static ohmen_status unknown_value(struct figures *f, const struct object *o, const char *value,
+                                  ohmen_error *e)
+{
+    const struct state *s = o->data;
+    struct nearest near;
+    nearest_init(&near, value);
+    for (size_t i = 0; i < s->varies.n; i++)
+        nearest_offer(&near, s->varies.keys[i]);
+    return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no state \"%s\"%s", o->id, value,
+                     nearest_hint(f->arena, &near));
+}
+
+ohmen_status figures_variant_in(struct figures *f, const struct variant *base, const char *state,
+                                const struct variant **out, ohmen_error *e)
+{
+    size_t n = strcspn(state, "="), i = 0;
+    const char *id = arena_strn(f->arena, state, n), *value = state[n] ? state + n + 1 : "";
+    const struct object *o = model_find(base->stem->model, id);
+    if (!o || o->kind != KIND_STATE)
+        return unknown_state(f, base->stem->model, id, e);
+    const struct state *s = o->data;
+    if (s->is.n)
+        return error_set(e, OHMEN_COMPUTE,
+                         "\"%s\" is unknown, which this version stores but does not evaluate", id);
+    while (i < s->varies.n && !text_equal(s->varies.keys[i], value))
+        i++;
+    if (i == s->varies.n)
+        return unknown_value(f, o, value, e);
+    if (variant_state(base, id))
+        return error_set(e, OHMEN_UNKNOWN, "the state \"%s\" is named twice", id);
+    return variant_in_state(f, base, o, i, out, e);
+}
+
+static ohmen_status make_up(struct figures *f, const char *name, const struct node *change,
+                            struct change **out, ohmen_error *e)
+{
+    struct diags d;
+    diags_init(&d, f->arena);
+    const struct node *bound = model_bind_change(f->arena, f->base, change, &d);
+    if (!bound) {
+        diags_sort(&d);
+        return error_set(e, OHMEN_COMPUTE, "%s", d.list.at[0].text);
     }
-    *out = v;
+    struct change *known = strmap_get(&f->made_up, name);
+    if (known && !node_equal(known->node, bound))
+        return error_set(e, OHMEN_UNKNOWN, "%s is another change already", name);
+    if (!known) {
+        known = NEW(f->arena, struct change);
+        *known = (struct change){.sort = CHANGE_MADE_UP, .name = name, .node = bound};
+        strmap_set(f->arena, &f->made_up, name, known);
+    }
+    *out = known;
     return OHMEN_OK;
 }
 
-bool variant_reaches(const struct variant *v, const char *id)
+ohmen_status figures_variant_with(struct figures *f, const struct variant *base, const char *name,
+                                  const struct node *change, const struct variant **out,
+                                  ohmen_error *e)
+{
+    struct change *c = NULL;
+    if (!*name || strpbrk(name, "[]"))
+        return error_set(e, OHMEN_UNKNOWN, "\"%s\" cannot be the name of a change", name);
+    ohmen_status status = make_up(f, arena_printf(f->arena, "[%s]", name), change, &c, e);
+    return status == OHMEN_OK ? variant_made_up(f, base, c, out, e) : status;
+}
+
+/* What is made up may change states, so those that the base fixes are fixed again over it. */
+static ohmen_status rebase(struct figures *f, const struct variant *base,
+                           const struct change *change, const struct variant **out, ohmen_error *e)
+{
+    ohmen_status status = variant_and(f, base->stem, change, out, e);
+    for (size_t i = 0; status == OHMEN_OK && i < base->n; i++)
+        if (base->changes[i].sort == CHANGE_STATE)
+            status = figures_variant_in(f, *out, base->changes[i].name, out, e);
+    return status;
+}
+
+ohmen_status variant_made_up(struct figures *f, const struct variant *base,
+                             const struct change *change, const struct variant **out,
+                             ohmen_error *e)
+{
+    for (size_t i = 0; i < base->n; i++)
+        if (text_equal(base->changes[i].name, change->name)) {
+            *out = base;
+            return OHMEN_OK;
+        }
+    return rebase(f, base, change, out, e);
+}
+
+/* --- projection --- */
+
+const char *variant_state(const struct variant *v, const char *state)
+{
+    for (size_t i = v->n_options; i < v->n; i++)
+        if (v->changes[i].sort == CHANGE_STATE && text_equal(v->changes[i].state, state))
+            return v->changes[i].value;
+    return NULL;
+}
+
+/* Marks the changes of v that a hazard depends on in some of its operating states. */
+static ohmen_status keep_of_hazard(struct figures *f, const struct variant *v, const char *hazard,
+                                   bool *keep, ohmen_error *e)
+{
+    const struct combinations *c;
+    ohmen_status status = states_of(f, v, hazard, &c, e);
+    for (size_t i = 0; status == OHMEN_OK && i < v->n; i++)
+        keep[i] = keep[i] || strmap_has(&c->kept, v->changes[i].name);
+    return status;
+}
+
+struct below {
+    struct strmap seen;
+    ARRAY(const char *) hazards;
+};
+
+/* The hazards that an object refers to, directly or not; the object itself where it is one. */
+static void hazards_below(struct figures *f, const struct model *m, const char *id, struct below *b)
+{
+    strmap_set(f->arena, &b->seen, id, NULL);
+    for (size_t i = 0; i < b->seen.n; i++) {
+        const struct object *o = model_find(m, b->seen.at[i].key);
+        if (o && o->kind == KIND_HAZARD) {
+            *array_push(f->arena, &b->hazards) = o->id;
+            continue;
+        }
+        for (size_t r = 0; o && r < o->refs.n; r++) {
+            const struct object *to = model_find(m, o->refs.at[r].id);
+            if (reference_computes(&o->refs.at[r], to) && !strmap_has(&b->seen, to->id))
+                strmap_set(f->arena, &b->seen, to->id, NULL);
+        }
+    }
+}
+
+/* Which changes matter to an object. */
+static ohmen_status find_kept(struct figures *f, const struct variant *v, const char *id,
+                              bool *keep, ohmen_error *e)
+{
+    struct below b = {0};
+    for (size_t i = 0; i < v->n; i++)
+        keep[i] = strmap_has(&v->reached[i], id);
+    if (v->stem->varying.n == 0)
+        return OHMEN_OK;
+    hazards_below(f, v->model, id, &b);
+    for (size_t i = 0; i < b.hazards.n; i++) {
+        ohmen_status status = keep_of_hazard(f, v, b.hazards.at[i], keep, e);
+        if (status != OHMEN_OK)
+            return status;
+    }
+    return OHMEN_OK;
+}
+
+/* Does a change touch this state itself? */
+static bool touches_state(const struct figures *f, const struct change *c, const char *state)
+{
+    const struct node *states = node_get(laid_over(f, c).node, kinds[KIND_STATE].section);
+    return node_get(states, state) != NULL;
+}
+
+/* A state means what the other changes make of it: those go with it. */
+static void keep_makers_of_states(const struct figures *f, const struct variant *v, bool *keep)
 {
     for (size_t i = 0; i < v->n; i++)
-        if (strmap_has(&v->reached[i], id))
-            return true;
-    return false;
+        for (size_t k = 0; keep[i] && v->changes[i].sort == CHANGE_STATE && k < v->n; k++)
+            keep[k] = keep[k] || (v->changes[k].sort != CHANGE_STATE &&
+                                  touches_state(f, &v->changes[k], v->changes[i].state));
+}
+
+static ohmen_status project(struct figures *f, const struct variant *v, const char *id,
+                            const struct variant **out, ohmen_error *e)
+{
+    bool *keep = NEW_ARRAY(f->arena, v->n, bool);
+    struct change *kept = NEW_ARRAY(f->arena, v->n, struct change);
+    size_t n = 0;
+    ohmen_status status = find_kept(f, v, id, keep, e);
+    if (status != OHMEN_OK)
+        return status;
+    keep_makers_of_states(f, v, keep);
+    for (size_t i = 0; i < v->n; i++)
+        if (keep[i])
+            kept[n++] = v->changes[i];
+    if (n < v->n)
+        return variant_of(f, n, kept, out, e);
+    *out = v;
+    return OHMEN_OK;
 }
 
 ohmen_status variant_project(struct figures *f, const struct variant *v, const char *id,
                              const struct variant **out, ohmen_error *e)
 {
-    const char **kept = NEW_ARRAY(f->arena, v->n, const char *);
-    size_t n = 0;
-    for (size_t i = 0; i < v->n; i++)
-        if (strmap_has(&v->reached[i], id))
-            kept[n++] = v->options[i];
-    if (n == v->n) {
-        *out = v;
+    bool known = strmap_has(v->projections, id);
+    *out = known ? strmap_get(v->projections, id) : v;
+    if (v->n == 0 || known)
         return OHMEN_OK;
-    }
-    return figures_variant(f, n, kept, out, e);
+    ohmen_status status = project(f, v, id, out, e);
+    if (status == OHMEN_OK && v->stem->varying.n)
+        strmap_set(f->arena, v->projections, id, (void *)*out);
+    return status;
+}
+
+bool variant_reaches(const struct variant *v, const char *id)
+{
+    const struct variant *projected;
+    ohmen_status status = variant_project(v->figures, v, id, &projected, NULL);
+    return status != OHMEN_OK || projected->n > 0;
 }

@@ -44,6 +44,13 @@ void check_option(struct checking *c, const struct object *o);
 void check_state(struct checking *c, const struct object *o);
 void check_decision(struct checking *c, const struct object *o);
 
+/* What the states that vary make of a register: of `under`, which is `base` with the change of
+ * `option`, or `base` itself where that is NULL. */
+void check_states(struct arena *a, const struct model *base, const struct model *under,
+                  const char *option, struct diags *d);
+
+bool check_has_row(const struct rows *rows, const char *key);
+
 /* The place of a node of this object (its own, or the register with its path). */
 struct place check_place(const struct object *o, const struct node *node);
 

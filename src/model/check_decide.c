@@ -5,7 +5,7 @@
 #include <math.h>
 #include <string.h>
 
-static bool has_row(const struct rows *rows, const char *key)
+bool check_has_row(const struct rows *rows, const char *key)
 {
     for (size_t i = 0; i < rows->n; i++)
         if (text_equal(rows->keys[i], key))
@@ -16,7 +16,7 @@ static bool has_row(const struct rows *rows, const char *key)
 static void expect_row(struct checking *c, const struct rows *rows, const char *key,
                        struct place at, const char *what)
 {
-    if (has_row(rows, key))
+    if (check_has_row(rows, key))
         return;
     struct nearest near;
     nearest_init(&near, key);
@@ -70,9 +70,21 @@ static void check_survey(struct checking *c, const struct rows *states,
     for (size_t i = 0; i < t->given.n; i++)
         check_reliability(c, t, i, given->pairs[i].value);
     for (size_t i = 0; i < states->n; i++)
-        if (!has_row(&t->given, states->keys[i]))
+        if (!check_has_row(&t->given, states->keys[i]))
             diag_add(c->diags, given->place, "the readings in the state \"%s\" are missing",
                      states->keys[i]);
+}
+
+/* States are what they are whatever state another is in: their changes leave states alone. */
+static void check_when(struct checking *c, const struct rows *states, const struct node *when)
+{
+    expect_keys(c, states, when);
+    for (size_t i = 0; when && i < when->n; i++) {
+        const struct node *change = when->pairs[i].value;
+        for (size_t s = 0; s < change->n; s++)
+            if (text_equal(change->pairs[s].key, kinds[KIND_STATE].section))
+                diag_add(c->diags, change->pairs[s].place, "a state cannot change states");
+    }
 }
 
 void check_state(struct checking *c, const struct object *o)
@@ -85,7 +97,7 @@ void check_state(struct checking *c, const struct object *o)
         return;
     }
     check_shares(c, node, states, plain_share, "probabilities of the states");
-    expect_keys(c, states, node_get(o->node, "when"));
+    check_when(c, states, node_get(o->node, "when"));
     const struct node *becomes = node_get(o->node, "becomes");
     expect_keys(c, states, becomes);
     for (size_t i = 0; becomes && i < becomes->n; i++)
@@ -153,7 +165,7 @@ static void check_inspect(struct tree_check *t, const struct step *s, const stru
         if (!text_equal(state->tests.keys[i], dot + 1))
             continue;
         for (size_t r = 0; r < test->reads.n; r++)
-            if (!has_row(&s->reads, test->reads.at[r]))
+            if (!check_has_row(&s->reads, test->reads.at[r]))
                 diag_add(t->c->diags, node->place, "the reading \"%s\" has no branch",
                          test->reads.at[r]);
     }
@@ -168,7 +180,7 @@ static void check_step(struct tree_check *t, const struct step *s, const struct 
                  "a choice, a chance or an inspection is the last step of a branch");
     if (s->reads.n && !s->inspect)
         diag_add(t->c->diags, node_get(node, "reads")->place, "\"reads\" belongs to \"inspect\"");
-    if (s->go && !has_row(&t->decision->subtrees, s->go))
+    if (s->go && !check_has_row(&t->decision->subtrees, s->go))
         expect_row(t->c, &t->decision->subtrees, s->go, node_get(node, "go")->place, "subtree");
     if (s->inspect)
         check_inspect(t, s, node);

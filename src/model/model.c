@@ -2,8 +2,8 @@
 /* Loading: from nodes of all objects to a checked model.
  *
  * Owns nothing beyond the arena. Invariant: a model that model_load returns has
- * passed every check, alone and under each of its options, so that nothing later
- * needs to expect a wrong one. */
+ * passed every check, alone, under each of its options and in each operating state, so
+ * that nothing later needs to expect a wrong one. */
 #include "model/model.h"
 
 #include <stdlib.h>
@@ -126,12 +126,19 @@ static void bind_all(struct model *m, const struct model_source *sources, size_t
     }
 }
 
-/* Each option alone must leave a register without fault. */
+/* Each option alone must leave a register without fault, in every state. */
 static void check_options(struct model *m, struct diags *d)
 {
     const struct objects *options = &m->of[KIND_OPTION];
-    for (size_t i = 0; i < options->n; i++)
-        model_variant(m->arena, m, 1, &options->at[i]->id, d);
+    size_t errors = d->count;
+    check_states(m->arena, m, m, NULL, d);
+    bool states = d->count == errors;
+    for (size_t i = 0; i < options->n; i++) {
+        const char *id = options->at[i]->id;
+        const struct model *under = model_variant(m->arena, m, 1, &id, d);
+        if (under && states)
+            check_states(m->arena, m, under, id, d);
+    }
 }
 
 static void check_all(struct model *m, struct diags *d)

@@ -57,9 +57,37 @@ struct units model_units(struct arena *a, const struct node *settings);
 
 /* --- variants --- */
 
-/* A model over `base` with the changes of `options` (ids in byte order) applied.
- * Adds diagnostics (at the places in the options' changes) and returns NULL when
- * a result is wrong or two options contradict. n may be 0: `base` itself. */
+/* What is laid over a register: the change of an option, what a state changes, or any other. */
+struct model_change {
+    const char *word;        /* what it is, for messages: "option", "state", "change" */
+    const char *name;        /* "FIT-87B", "T2-OUT=a-out" */
+    const struct node *node; /* bound; NULL: changes nothing */
+    struct place place;      /* of contradictions with a change that stands before it */
+};
+
+/* A model over `base` with the changes applied, in this order (which has no meaning: changes
+ * that contradict each other are refused). Adds diagnostics (at the places in the changes) and
+ * returns NULL when a result is wrong or two changes contradict. n may be 0: `base` itself. */
+const struct model *model_change(struct arena *a, const struct model *base, size_t n,
+                                 const struct model_change *changes, struct diags *d);
+
+/* The change of an option of `base`. */
+struct model_change model_option_change(const struct model *base, const char *option);
+
+/* What a state changes: of row `value` of the operating states of `state`, an object of this
+ * kind; a node of NULL where it changes nothing. The name "STATE=VALUE" lives in `a`. */
+struct model_change model_state_change(struct arena *a, const struct object *state, size_t value);
+
+/* A change as a user writes it in an option, bound: what model_change takes. NULL, with
+ * diagnostics, when it cannot be read. A bound change stays as it is. */
+const struct node *model_bind_change(struct arena *a, const struct model *base,
+                                     const struct node *change, struct diags *d);
+
+/* The states of a model that vary and change something, in byte order. */
+struct object_list ARRAY_BODY(const struct object *);
+void model_varying(struct arena *a, const struct model *m, struct object_list *out);
+
+/* model_change with the changes of `options` (ids in byte order). */
 const struct model *model_variant(struct arena *a, const struct model *base, size_t n,
                                   const char *const *options, struct diags *d);
 

@@ -1,28 +1,86 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Variants: a model with the changes of some options laid over it.
+/* Variants: a model with some changes laid over it.
  *
  * Only touched objects are bound anew; everything else is found below. Invariant:
- * the order of options does not matter, since contradictions are refused and `was`
+ * the order of changes does not matter, since contradictions are refused and `was`
  * only enters products. */
 #include "model/variant.h"
+
+#include <stdlib.h>
 
 #include "doc/patch.h"
 #include "model/check.h"
 
-static const struct node *change_of(const struct model *m, const char *option)
+struct model_change model_option_change(const struct model *base, const char *option)
 {
-    const struct option *o = model_get(m, KIND_OPTION, option);
-    return o->change;
+    const struct object *o = model_find(base, option);
+    const struct option *data = o->data;
+    return (struct model_change){"option", option, data->change, o->node->place};
 }
 
-const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
-                                const char *option_q)
+struct model_change model_state_change(struct arena *a, const struct object *state, size_t value)
+{
+    const struct state *s = state->data;
+    const char *key = s->varies.keys[value];
+    struct model_change c = {"state", arena_printf(a, "%s=%s", state->id, key), NULL,
+                             state->node->place};
+    for (size_t i = 0; i < s->when.n; i++)
+        if (text_equal(s->when.keys[i], key)) {
+            c.node = ((const struct node *const *)s->when.at)[i];
+            c.place = c.node->place;
+        }
+    return c;
+}
+
+const struct node *model_bind_change(struct arena *a, const struct model *base,
+                                     const struct node *change, struct diags *d)
+{
+    struct binding b = {.arena = a, .units = &base->units, .diags = d};
+    return bind_change(&b, change);
+}
+
+static void add_varying(struct arena *a, const struct object *o, struct object_list *out)
+{
+    if (o && o->kind == KIND_STATE && ((const struct state *)o->data)->varies.n &&
+        ((const struct state *)o->data)->when.n)
+        *array_push(a, out) = o;
+}
+
+static int by_id(const void *p, const void *q)
+{
+    return text_compare((*(const struct object *const *)p)->id,
+                        (*(const struct object *const *)q)->id);
+}
+
+void model_varying(struct arena *a, const struct model *m, struct object_list *out)
+{
+    for (const struct model *at = m; at; at = at->below) {
+        size_t n = at->below ? at->by_id.n : at->of[KIND_STATE].n;
+        for (size_t i = 0; i < n; i++) {
+            const struct object *o = at->below ? at->by_id.at[i].value : at->of[KIND_STATE].at[i];
+            if (o && model_find(m, o->id) == o)
+                add_varying(a, o, out);
+        }
+    }
+    if (out->n > 1)
+        qsort(out->at, out->n, sizeof *out->at, by_id);
+}
+
+static const char *contradiction(struct arena *a, const struct model *base, const struct node *p,
+                                 const struct node *q)
 {
     struct diags quiet;
     diags_init(&quiet, a);
     struct binding b = {.arena = a, .units = &base->units, .diags = &quiet};
     struct patch_rules rules = bind_patch_rules(&b);
-    return patch_contradiction(a, &rules, change_of(base, option_p), change_of(base, option_q));
+    return p && q ? patch_contradiction(a, &rules, p, q) : NULL;
+}
+
+const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
+                                const char *option_q)
+{
+    return contradiction(a, base, model_option_change(base, option_p).node,
+                         model_option_change(base, option_q).node);
 }
 
 struct applying {
@@ -72,10 +130,9 @@ static void apply_to_object(struct applying *ap, enum kind kind, const struct pa
     strmap_set(ap->arena, &ap->kind_of, p->key, (void *)&kinds[kind]);
 }
 
-static void apply_option(struct applying *ap, const char *option)
+static void apply_change(struct applying *ap, const struct node *change)
 {
-    const struct node *change = change_of(ap->variant->below, option);
-    for (size_t s = 0; s < change->n; s++) {
+    for (size_t s = 0; change && s < change->n; s++) {
         const struct pair *section = &change->pairs[s];
         enum kind kind = kind_of_section(section->key);
         for (size_t i = 0; i < section->value->n; i++)
@@ -149,25 +206,33 @@ static void check_results(struct applying *ap)
     check_cycles(&c);
 }
 
-static bool refuse_contradictions(struct applying *ap, size_t n, const char *const *options)
+static void report_contradiction(struct applying *ap, const struct model_change *p,
+                                 const struct model_change *q, const char *path)
+{
+    if (text_equal(p->word, q->word))
+        diag_add(ap->diags, q->place, "the %ss \"%s\" and \"%s\" contradict each other at %s",
+                 p->word, p->name, q->name, path);
+    else
+        diag_add(ap->diags, q->place, "the %s \"%s\" and the %s \"%s\" contradict each other at %s",
+                 p->word, p->name, q->word, q->name, path);
+}
+
+static bool refuse_contradictions(struct applying *ap, size_t n, const struct model_change *changes)
 {
     for (size_t i = 0; i < n; i++)
         for (size_t k = 0; k < i; k++) {
             const char *path =
-                model_contradiction(ap->arena, ap->variant->below, options[k], options[i]);
+                contradiction(ap->arena, ap->variant->below, changes[k].node, changes[i].node);
             if (!path)
                 continue;
-            const struct object *o = model_find(ap->variant->below, options[i]);
-            diag_add(ap->diags, o->node->place,
-                     "the options \"%s\" and \"%s\" contradict each other at %s", options[k],
-                     options[i], path);
+            report_contradiction(ap, &changes[k], &changes[i], path);
             return false;
         }
     return true;
 }
 
-const struct model *model_variant(struct arena *a, const struct model *base, size_t n,
-                                  const char *const *options, struct diags *d)
+const struct model *model_change(struct arena *a, const struct model *base, size_t n,
+                                 const struct model_change *changes, struct diags *d)
 {
     if (n == 0)
         return base;
@@ -181,13 +246,22 @@ const struct model *model_variant(struct arena *a, const struct model *base, siz
                           .binding = {.arena = a, .units = &m->units, .diags = d},
                           .diags = d};
     ap.rules = bind_patch_rules(&ap.binding);
-    if (!refuse_contradictions(&ap, n, options))
+    if (!refuse_contradictions(&ap, n, changes))
         return NULL;
     for (size_t i = 0; i < n; i++)
-        apply_option(&ap, options[i]);
+        apply_change(&ap, changes[i].node);
     if (d->count == errors)
         bind_results(&ap);
     if (d->count == errors)
         check_results(&ap);
     return d->count == errors ? m : NULL;
+}
+
+const struct model *model_variant(struct arena *a, const struct model *base, size_t n,
+                                  const char *const *options, struct diags *d)
+{
+    struct model_change *changes = NEW_ARRAY(a, n, struct model_change);
+    for (size_t i = 0; i < n; i++)
+        changes[i] = model_option_change(base, options[i]);
+    return model_change(a, base, n, changes, d);
 }

@@ -386,6 +386,55 @@ static void hazard_pairs(struct job *j, const struct compiled *c)
                     rows[i].unit, rows[i].style, figure_name(j->figures, j->arena, rows[i].id));
 }
 
+/* The operating states that the hazard is a mean over. */
+static void states_table(struct job *j, const struct compiled *c)
+{
+    struct report *r = j->report;
+    const struct hazard_exports *x = c->exports;
+    struct block *b = report_table(r, "states", "Operating states");
+    block_column(r, b, "state", "State", "", STYLE_PLAIN);
+    block_column(r, b, "share", "Share of time", "", STYLE_PROBABILITY);
+    block_column(r, b, "frequency", "Occurs", "1/a", STYLE_FREQUENCY)->keep = 1;
+    block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 2;
+    block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
+    for (size_t i = 0; i < x->n_states; i++) {
+        const struct hazard_state *s = &x->states[i];
+        const struct hazard_exports *y = s->unit ? s->unit->exports : NULL;
+        struct row *row = block_row(r, b);
+        row_text(r, row, s->name);
+        row_number(r, row, s->share, NULL);
+        for (int k = 0; !y && k < 3; k++)
+            row_empty(r, row);
+        if (!y)
+            continue;
+        number_cell(j, row, y->frequency);
+        number_cell(j, row, y->damaging);
+        number_cell(j, row, y->risk);
+    }
+}
+
+/* Whose event tree the table of ends shows, where there are several. */
+static const char *shown_state(const struct hazard_exports *x)
+{
+    for (size_t i = 0; i < x->n_states; i++)
+        if (x->states[i].unit &&
+            ((const struct hazard_exports *)x->states[i].unit->exports)->ends == x->ends)
+            return x->states[i].name;
+    return NULL;
+}
+
+static void part_states(struct job *j, const struct compiled *c)
+{
+    const struct hazard_exports *x = c->exports;
+    if (x->n_states == 0)
+        return;
+    states_table(j, c);
+    report_note(j->report, "states",
+                "The figures are means over the operating states; the event tree is that of %s, "
+                "which holds most of the time.",
+                shown_state(x));
+}
+
 static void part_figures(struct job *j, const struct compiled *c)
 {
     if (c->n == 0)
@@ -396,12 +445,16 @@ static void part_figures(struct job *j, const struct compiled *c)
     }
     hazard_pairs(j, c);
     outcomes_table(j, c);
+    part_states(j, c);
     ends_table(j, c);
     report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
 }
 
-static bool has_figures(enum kind k)
+static bool has_figures(const struct object *o)
 {
+    enum kind k = o->kind;
+    if (k == KIND_STATE)
+        return ((const struct state *)o->data)->varies.n > 0;
     return k == KIND_VALUE || k == KIND_RATE || k == KIND_TYPE || k == KIND_ELEMENT ||
            k == KIND_SCHEME || k == KIND_HAZARD;
 }
@@ -424,7 +477,7 @@ static ohmen_status compute(struct job *j, const struct object *o, const struct 
     ohmen_status status = OHMEN_OK;
     *c = NULL;
     *why = NULL;
-    if (has_figures(o->kind))
+    if (has_figures(o))
         status = figures_compile(j->figures, j->base, o->id, c, &error);
     if (status == OHMEN_OK)
         status = figures_evaluate(j->figures, &error);

@@ -91,10 +91,16 @@ bool formula_number(struct reader *r, long double *out)
     return true;
 }
 
-/* ".", "@" and "+" belong to a name where they touch what stands on both sides. */
+/* ".", "@", "+" and "=" belong to a name where they touch what stands on both sides. */
 static bool joins(const char *p)
 {
-    return (*p == '.' || *p == '@' || *p == '+') && in_name(p[1]);
+    return (*p == '.' || *p == '@' || *p == '+' || *p == '=') && (in_name(p[1]) || p[1] == '[');
+}
+
+/* Bytes of a made-up change, "[...]" behind @ or +, which may hold anything; else 0. */
+static size_t made_up(const char *p)
+{
+    return *p == '[' && (p[-1] == '@' || p[-1] == '+') && strchr(p, ']') ? strcspn(p, "]") + 1 : 0;
 }
 
 bool formula_name(struct reader *r, char out[NAME_BYTES])
@@ -103,8 +109,8 @@ bool formula_name(struct reader *r, char out[NAME_BYTES])
     formula_blanks(r);
     if (!formula_is_letter(*r->p))
         return false;
-    while (in_name(r->p[n]) || joins(r->p + n))
-        n++;
+    while (in_name(r->p[n]) || joins(r->p + n) || (n && made_up(r->p + n)))
+        n += in_name(r->p[n]) || joins(r->p + n) ? 1 : made_up(r->p + n);
     if (n >= NAME_BYTES)
         return formula_fail(r, "a name that is too long");
     memcpy(out, r->p, n);

@@ -258,8 +258,9 @@ static struct node *survey(struct generator *g)
 static void add_states(struct generator *g)
 {
     static const char *const skip[] = {"when", "becomes", "renewed-by", "tests", NULL};
-    struct node *m = make_pair(g, random_chance(g, 3) ? "varies" : "is", shares(g));
-    if (random_chance(g, 2))
+    bool varies = random_chance(g, 3);
+    struct node *m = make_pair(g, varies ? "varies" : "is", shares(g));
+    if (random_chance(g, 2) && !varies) /* what varies must agree with every option */
         put_node(g, m, "when", make_pair(g, "aged", small_change(g)));
     if (random_chance(g, 2))
         put_node(g, m, "becomes",

@@ -1,0 +1,362 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Operating states: their shares of time, and hazards as the mean over them.
+ *
+ * The hazard in each combination of states is a unit of its own; the mean reads those. The
+ * network is in one combination at each time, so that frequencies and risks are weighted by
+ * the shares of time, and what is said of one occurrence (a probability, a damage) by how
+ * often it occurs in each. Owns nothing beyond the arena of the figures. */
+#include "figure/horizon.h"
+#include "figure/states.h"
+
+/* --- shares --- */
+
+static bool is_rest(const struct quantity *q)
+{
+    return q->shape == SHAPE_EXPRESSION && !q->expr;
+}
+
+/* 1 less all other shares. */
+static node_id rest_share(struct building *b, size_t n, const node_id *others)
+{
+    struct graph *g = b->figures->graph;
+    return graph_op1(g, OP_COMPLEMENT, n == 1 ? others[0] : graph_op(g, OP_SUM, n, others));
+}
+
+ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
+                           struct compiled **out, ohmen_error *e)
+{
+    const struct state *s = o->data;
+    struct building b;
+    if (s->is.n)
+        return error_set(e, OHMEN_COMPUTE,
+                         "\"%s\" is unknown, which this version stores but does not evaluate",
+                         o->id);
+    const struct quantity *const *shares = s->varies.at;
+    node_id *nodes = NEW_ARRAY(f->arena, s->varies.n, node_id);
+    size_t n = 0;
+    compiled_begin(f, v, o, o->id, &b);
+    for (size_t i = 0; i < s->varies.n; i++) {
+        if (is_rest(shares[i]))
+            continue;
+        nodes[n] = compile_quantity(&b, shares[i]);
+        compiled_add(&b, PROPERTY_SHARE, s->varies.keys[i], NULL, nodes[n++], s->source,
+                     quantity_reads(f, shares[i]));
+    }
+    for (size_t i = 0; i < s->varies.n; i++)
+        if (is_rest(shares[i]))
+            compiled_add(&b, PROPERTY_SHARE, s->varies.keys[i], NULL, rest_share(&b, n, nodes),
+                         s->source, NULL);
+    compiled_end(&b);
+    *out = b.unit;
+    return OHMEN_OK;
+}
+
+/* --- the hazard in each combination --- */
+
+struct mixing {
+    struct figures *f;
+    struct building b;
+    const struct object *object;
+    const struct hazard *hazard;
+    const struct combinations *combined;
+    const struct compiled **units; /* NULL: there is no such hazard */
+    node_id *weights;
+    struct hazard_exports *exports;
+};
+
+static const struct compiled *state_unit(const struct mixing *m, const struct object *state)
+{
+    const struct building under = {.figures = m->f, .variant = m->b.variant->stem};
+    return compiled_of(&under, state->id);
+}
+
+static figure_id share_of(const struct mixing *m, const struct combination *c, size_t i)
+{
+    const struct state *s = c->states[i]->data;
+    return compiled_figure(m->f, state_unit(m, c->states[i]), PROPERTY_SHARE,
+                           s->varies.keys[c->values[i]], NULL);
+}
+
+/* What is not in the hazard of the register would stand in no list. */
+static ohmen_status refuse_new_outcomes(const struct mixing *m, const struct compiled *u,
+                                        ohmen_error *e)
+{
+    const struct hazard *h = u->object->data;
+    for (size_t k = 0; k < h->outcomes.n; k++) {
+        size_t i = 0;
+        while (i < m->hazard->outcomes.n &&
+               !text_equal(m->hazard->outcomes.keys[i], h->outcomes.keys[k]))
+            i++;
+        if (i == m->hazard->outcomes.n)
+            return error_set(e, OHMEN_COMPUTE,
+                             "\"%s\" has the outcome \"%s\" in some operating states only",
+                             m->object->id, h->outcomes.keys[k]);
+    }
+    return OHMEN_OK;
+}
+
+static ohmen_status compile_combination(struct mixing *m, size_t i, ohmen_error *e)
+{
+    const struct combination *c = &m->combined->list.at[i];
+    ohmen_status status = OHMEN_OK;
+    for (size_t k = 0; status == OHMEN_OK && k < c->n; k++) {
+        const struct compiled *unused;
+        status = figures_compile(m->f, m->b.variant->stem, c->states[k]->id, &unused, e);
+    }
+    if (status != OHMEN_OK || !model_find(c->variant->model, m->object->id))
+        return status;
+    status = figures_compile(m->f, c->variant, m->object->id, &m->units[i], e);
+    return status == OHMEN_OK ? refuse_new_outcomes(m, m->units[i], e) : status;
+}
+
+static ohmen_status compile_combinations(struct mixing *m, ohmen_error *e)
+{
+    ohmen_status status = OHMEN_OK;
+    size_t n = m->combined->list.n, present = 0;
+    m->units = NEW_ARRAY(m->f->arena, n, const struct compiled *);
+    for (size_t i = 0; status == OHMEN_OK && i < n; i++) {
+        status = compile_combination(m, i, e);
+        present += m->units[i] != NULL;
+    }
+    if (status == OHMEN_OK && present == 0)
+        return error_set(e, OHMEN_COMPUTE, "there is no \"%s\" in any operating state",
+                         m->object->id);
+    return status;
+}
+
+/* --- means --- */
+
+static const struct hazard_exports *exports_at(const struct mixing *m, size_t i)
+{
+    return m->units[i]->exports;
+}
+
+/* Weight times figure over the combinations; FIGURE_NONE is 0. */
+static node_id weighted(struct mixing *m, const figure_id *figures, struct dim d)
+{
+    struct graph *g = m->f->graph;
+    node_id *terms = NEW_ARRAY(m->f->arena, m->combined->list.n, node_id);
+    size_t n = 0;
+    for (size_t i = 0; i < m->combined->list.n; i++)
+        if (figures[i] != FIGURE_NONE)
+            terms[n++] =
+                graph_op2(g, OP_MULTIPLY, m->weights[i], figure_at(m->f, figures[i])->node);
+    if (n == 0)
+        return compile_const(&m->b, 0, d, NULL);
+    return n == 1 ? terms[0] : graph_op(g, OP_SUM, n, terms);
+}
+
+/* The product of the shares, which are independent of each other. */
+static node_id weight_of(struct mixing *m, const struct combination *c)
+{
+    node_id w = figure_at(m->f, share_of(m, c, 0))->node;
+    for (size_t k = 1; k < c->n; k++)
+        w = graph_op2(m->f->graph, OP_MULTIPLY, w, figure_at(m->f, share_of(m, c, k))->node);
+    return w;
+}
+
+/* Figures of the same sort, one a combination. */
+static const figure_id *gather(struct mixing *m, size_t offset)
+{
+    figure_id *ids = NEW_ARRAY(m->f->arena, m->combined->list.n, figure_id);
+    for (size_t i = 0; i < m->combined->list.n; i++)
+        ids[i] = m->units[i] ? *(const figure_id *)((const char *)exports_at(m, i) + offset)
+                             : FIGURE_NONE;
+    return ids;
+}
+
+/* The same of an outcome, by its name. */
+static const figure_id *gather_outcome(struct mixing *m, size_t offset, const char *outcome)
+{
+    figure_id *ids = NEW_ARRAY(m->f->arena, m->combined->list.n, figure_id);
+    for (size_t i = 0; i < m->combined->list.n; i++) {
+        ids[i] = FIGURE_NONE;
+        const struct hazard *h = m->units[i] ? m->units[i]->object->data : NULL;
+        for (size_t k = 0; h && k < h->outcomes.n; k++)
+            if (text_equal(h->outcomes.keys[k], outcome))
+                ids[i] = (*(figure_id *const *)((const char *)exports_at(m, i) + offset))[k];
+    }
+    return ids;
+}
+
+/* Is how often the hazard occurs the same in all combinations? It is where it reads the same
+ * and all that it names is the same unit. */
+static bool same_frequency(const struct mixing *m)
+{
+    const struct compiled *first = m->units[0];
+    for (size_t i = 0; i < m->combined->list.n; i++) {
+        const struct compiled *u = m->units[i];
+        if (!u || !node_equal(node_get(u->object->node, "frequency"),
+                              node_get(first->object->node, "frequency")))
+            return false;
+        for (size_t r = 0; r < u->object->refs.n; r++) {
+            const struct reference *ref = &u->object->refs.at[r];
+            const struct building p = {.figures = m->f, .variant = first->variant};
+            const struct building q = {.figures = m->f, .variant = u->variant};
+            if (text_starts(ref->path, "frequency") &&
+                compiled_of(&p, ref->id) != compiled_of(&q, ref->id))
+                return false;
+        }
+    }
+    return true;
+}
+
+/* --- the mean hazard --- */
+
+static void add_frequency(struct mixing *m, bool same)
+{
+    const figure_id *ids = gather(m, offsetof(struct hazard_exports, frequency));
+    node_id n = same ? figure_at(m->f, ids[0])->node : weighted(m, ids, dim_frequency);
+    m->exports->frequency =
+        compiled_add(&m->b, PROPERTY_FREQUENCY, NULL, NULL, n, m->hazard->source, NULL);
+}
+
+static void add_outcome(struct mixing *m, size_t k, bool same)
+{
+    struct hazard_exports *x = m->exports;
+    struct graph *g = m->f->graph;
+    const char *key = m->hazard->outcomes.keys[k];
+    const figure_id *p = gather_outcome(m, offsetof(struct hazard_exports, probability), key);
+    const figure_id *f = gather_outcome(m, offsetof(struct hazard_exports, frequency_of), key);
+    const figure_id *r = gather_outcome(m, offsetof(struct hazard_exports, risk_of), key);
+    node_id often = weighted(m, f, dim_frequency), risk = weighted(m, r, dim_money_rate);
+    node_id all = figure_at(m->f, x->frequency)->node;
+    node_id share = same ? weighted(m, p, dim_number) : graph_op2(g, OP_RATIO, often, all);
+    x->probability[k] = compiled_add(&m->b, PROPERTY_PROBABILITY, key, NULL, share, NULL, NULL);
+    x->frequency_of[k] = compiled_add(&m->b, PROPERTY_FREQUENCY, key, NULL, often, NULL, NULL);
+    x->damage_of[k] = compiled_add(&m->b, PROPERTY_DAMAGE, key, NULL,
+                                   graph_op2(g, OP_RATIO, risk, often), NULL, NULL);
+    x->risk_of[k] = compiled_add(&m->b, PROPERTY_RISK, key, NULL, risk, NULL, NULL);
+}
+
+static void add_sums(struct mixing *m)
+{
+    struct hazard_exports *x = m->exports;
+    const figure_id *f = gather(m, offsetof(struct hazard_exports, damaging));
+    const figure_id *r = gather(m, offsetof(struct hazard_exports, risk));
+    node_id damaging = weighted(m, f, dim_frequency), risk = weighted(m, r, dim_money_rate);
+    x->damaging = compiled_add(&m->b, PROPERTY_DAMAGING, NULL, NULL, damaging, NULL, NULL);
+    x->risk = compiled_add(&m->b, PROPERTY_RISK, NULL, NULL, risk, NULL, NULL);
+    x->damage = compiled_add(&m->b, PROPERTY_DAMAGE, NULL, NULL,
+                             graph_op2(m->f->graph, OP_RATIO, risk, damaging), NULL, NULL);
+}
+
+/* Risk by year, where it is one of each year in some combination. */
+static void add_years(struct mixing *m)
+{
+    struct hazard_exports *x = m->exports;
+    struct figures *f = m->f;
+    const struct register_settings *s = f->base->settings;
+    uint32_t years = horizon_length(s);
+    bool yearly = false;
+    for (size_t i = 0; i < m->combined->list.n; i++)
+        yearly = yearly || (m->units[i] && exports_at(m, i)->of_year);
+    x->n_yearly = yearly ? years : 1;
+    x->yearly = &x->risk;
+    if (!yearly)
+        return;
+    figure_id *risks = NEW_ARRAY(f->arena, years, figure_id);
+    uint32_t *of_year = NEW_ARRAY(f->arena, years, uint32_t);
+    figure_id *parts = NEW_ARRAY(f->arena, m->combined->list.n, figure_id);
+    for (uint32_t y = 0; y < years; y++) {
+        for (size_t i = 0; i < m->combined->list.n; i++) {
+            const struct hazard_exports *in = m->units[i] ? exports_at(m, i) : NULL;
+            parts[i] = in ? in->yearly[in->of_year ? in->of_year[y] : 0] : FIGURE_NONE;
+        }
+        of_year[y] = y;
+        risks[y] = compiled_add(&m->b, PROPERTY_RISK, horizon_label(f->arena, s, y), NULL,
+                                weighted(m, parts, dim_money_rate), NULL, NULL);
+    }
+    x->yearly = risks;
+    x->of_year = of_year;
+}
+
+static void add_figures(struct mixing *m)
+{
+    struct hazard_exports *x = m->exports;
+    struct arena *a = m->f->arena;
+    bool same = same_frequency(m);
+    m->weights = NEW_ARRAY(a, m->combined->list.n, node_id);
+    for (size_t i = 0; i < m->combined->list.n; i++)
+        m->weights[i] = weight_of(m, &m->combined->list.at[i]);
+    x->n_outcomes = m->hazard->outcomes.n;
+    x->probability = NEW_ARRAY(a, x->n_outcomes, figure_id);
+    x->frequency_of = NEW_ARRAY(a, x->n_outcomes, figure_id);
+    x->damage_of = NEW_ARRAY(a, x->n_outcomes, figure_id);
+    x->risk_of = NEW_ARRAY(a, x->n_outcomes, figure_id);
+    add_frequency(m, same);
+    for (size_t k = 0; k < x->n_outcomes; k++)
+        add_outcome(m, k, same);
+    add_sums(m);
+    add_years(m);
+}
+
+/* --- the states, for those who show them --- */
+
+static const char *combination_name(struct arena *a, const struct combination *c)
+{
+    struct text t;
+    text_init(&t, a);
+    for (size_t k = 0; k < c->n; k++) {
+        const struct state *s = c->states[k]->data;
+        text_printf(&t, "%s%s=%s", k ? "+" : "", c->states[k]->id, s->varies.keys[c->values[k]]);
+    }
+    return text_str(&t);
+}
+
+/* Shares are certain: what they are worth now they are worth for good. 0 where something that
+ * was compiled so far is no number, which figures_evaluate tells. */
+static void list_states(struct mixing *m)
+{
+    struct hazard_exports *x = m->exports;
+    node_id culprit;
+    bool fine = eval_point(m->f->eval, &culprit, NULL) == OHMEN_OK;
+    x->n_states = m->combined->list.n;
+    x->states = NEW_ARRAY(m->f->arena, x->n_states, struct hazard_state);
+    for (size_t i = 0; i < x->n_states; i++) {
+        const struct combination *c = &m->combined->list.at[i];
+        double share = fine ? 1 : 0;
+        for (size_t k = 0; k < c->n && fine; k++)
+            share *= figure_value(m->f, share_of(m, c, k));
+        x->states[i] = (struct hazard_state){combination_name(m->f->arena, c), share, m->units[i]};
+    }
+}
+
+/* The event tree that stands for all: of the state that holds most of the time. */
+static void show_most(struct mixing *m)
+{
+    struct hazard_exports *x = m->exports;
+    const struct hazard_state *most = NULL;
+    for (size_t i = 0; i < x->n_states; i++)
+        if (x->states[i].unit && (!most || x->states[i].share > most->share))
+            most = &x->states[i];
+    const struct hazard_exports *shown = most->unit->exports;
+    x->diagram = shown->diagram;
+    x->node = shown->node;
+    x->n_events = shown->n_events;
+    x->events = shown->events;
+    x->span = shown->span;
+    x->ends = shown->ends;
+    x->n_ends = shown->n_ends;
+}
+
+ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, const struct object *o,
+                                 const struct combinations *c, struct compiled **out,
+                                 ohmen_error *e)
+{
+    struct mixing m = {.f = f, .object = o, .hazard = o->data, .combined = c};
+    m.b.variant = v;
+    ohmen_status status = compile_combinations(&m, e);
+    if (status != OHMEN_OK)
+        return status;
+    m.exports = NEW(f->arena, struct hazard_exports);
+    list_states(&m);
+    show_most(&m);
+    compiled_begin(f, v, o, o->id, &m.b);
+    m.b.unit->exports = m.exports;
+    add_figures(&m);
+    m.b.unit->main = m.exports->risk;
+    compiled_end(&m.b);
+    *out = m.b.unit;
+    return OHMEN_OK;
+}

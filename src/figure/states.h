@@ -1,0 +1,58 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Which operating states a hazard depends on, in which combinations. Private to src/figure.
+ *
+ * A state reaches a hazard when what it changes in one of its values reaches it, in the
+ * combination of the other states. So the combinations are the leaves of a tree: at each node
+ * the first state (in byte order) that reaches the hazard there branches into its values, or
+ * takes the one that the variant fixes. */
+#ifndef FIGURE_STATES_H
+#define FIGURE_STATES_H
+
+#include "figure/compile.h"
+
+/* Combinations of operating states of one hazard. */
+#define STATES_COMBINED 64
+
+struct combination {
+    const struct variant *variant; /* every state that matters is fixed */
+    size_t n;                      /* states that were not fixed before */
+    const struct object **states;
+    size_t *values; /* rows of `varies` */
+};
+
+struct combinations {
+    ARRAY(struct combination) list;
+    struct strmap kept; /* names of changes of the variant that matter to the hazard */
+};
+
+/* The combinations of a hazard under a variant, made once for each. One without states: the
+ * hazard is no mean. OHMEN_COMPUTE for more than STATES_COMBINED, and when changes contradict. */
+ohmen_status states_of(struct figures *f, const struct variant *v, const char *hazard,
+                       const struct combinations **out, ohmen_error *e);
+
+/* The value of a state that a variant fixes, or NULL. */
+const char *variant_state(const struct variant *v, const char *state);
+
+/* The variant with one more state fixed, by its row of `varies`. */
+ohmen_status variant_in_state(struct figures *f, const struct variant *base,
+                              const struct object *state, size_t value, const struct variant **out,
+                              ohmen_error *e);
+
+/* The variant with a made-up change that is known; base itself where it has that. */
+ohmen_status variant_made_up(struct figures *f, const struct variant *base,
+                             const struct change *change, const struct variant **out,
+                             ohmen_error *e);
+
+/* Does a reference to this object compute anything? */
+bool reference_computes(const struct reference *r, const struct object *to);
+
+/* A state that varies: its shares. */
+ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
+                           struct compiled **out, ohmen_error *e);
+
+/* A hazard under its projected variant: the mean over its combinations. */
+ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, const struct object *o,
+                                 const struct combinations *c, struct compiled **out,
+                                 ohmen_error *e);
+
+#endif
