@@ -228,15 +228,22 @@ static ohmen_status compile_rate(struct figures *f, const struct variant *v, con
 
 /* --- references first --- */
 
-static ohmen_status compile_frequency_of(struct figures *f, const struct variant *v,
-                                         const struct object *o, ohmen_error *e)
+ohmen_status compile_frequency_of(struct figures *f, const struct variant *v,
+                                  const struct object *o, ohmen_error *e)
 {
     const struct variant *projected;
+    const struct combinations *c = NULL;
     ohmen_status status = variant_project(f, v, o->id, &projected, e);
     struct building under = {.figures = f, .variant = projected};
     if (status != OHMEN_OK || compiled_part(&under, o->id, PART_FREQUENCY))
         return status;
     o = model_find(projected->model, o->id);
+    if (projected->stem->varying.n)
+        status = states_of(f, projected, o->id, &c, e);
+    if (status != OHMEN_OK)
+        return status;
+    if (c && c->list.at[0].n)
+        return compile_mean_frequency(f, projected, o, c, e);
     status = compile_references_at(f, projected, o, "frequency", e);
     if (status == OHMEN_OK)
         compile_frequency_unit(f, projected, o);
@@ -306,12 +313,12 @@ static ohmen_status compile_object(struct figures *f, const struct variant *v,
     ohmen_status status = OHMEN_OK;
     if (o->kind == KIND_HAZARD && v->stem->varying.n)
         status = states_of(f, v, o->id, &c, e);
+    if (status == OHMEN_OK && o->kind == KIND_HAZARD)
+        status = compile_frequency_of(f, v, o, e);
     if (status == OHMEN_OK && c && c->list.at[0].n)
         return compile_mean_hazard(f, v, o, c, out, e);
     if (status == OHMEN_OK)
         status = compile_references(f, v, o, e);
-    if (status == OHMEN_OK && o->kind == KIND_HAZARD)
-        status = compile_frequency_of(f, v, o, e);
     if (status != OHMEN_OK)
         return status;
     switch (o->kind) {

@@ -60,6 +60,8 @@ struct frequency_exports {
 /* Is what a name stands for different in b->year? Its node then. */
 bool compile_has_year(const struct building *b, const char *id);
 node_id compile_in_year(struct building *b, const char *id);
+ohmen_status compile_frequency_of(struct figures *f, const struct variant *v,
+                                  const struct object *o, ohmen_error *e);
 void compile_frequency_unit(struct figures *f, const struct variant *v, const struct object *o);
 
 /* Nodes. */

@@ -179,37 +179,135 @@ static const figure_id *gather_outcome(struct mixing *m, size_t offset, const ch
     return ids;
 }
 
-/* Is how often the hazard occurs the same in all combinations? It is where it reads the same
- * and all that it names is the same unit. */
-static bool same_frequency(const struct mixing *m)
+/* --- frequency --- */
+
+static const struct object *object_in(const struct mixing *m, size_t i)
 {
-    const struct compiled *first = m->units[0];
-    for (size_t i = 0; i < m->combined->list.n; i++) {
-        const struct compiled *u = m->units[i];
-        if (!u || !node_equal(node_get(u->object->node, "frequency"),
-                              node_get(first->object->node, "frequency")))
+    return model_find(m->combined->list.at[i].variant->model, m->object->id);
+}
+
+/* Does the frequency of two combinations read the same, and is all that it names the same? */
+static bool same_in(const struct mixing *m, size_t i, size_t k)
+{
+    const struct object *o = object_in(m, i), *other = object_in(m, k);
+    const struct building p = {.figures = m->f, .variant = m->combined->list.at[i].variant};
+    const struct building q = {.figures = m->f, .variant = m->combined->list.at[k].variant};
+    if (!o || !other ||
+        !node_equal(node_get(o->node, "frequency"), node_get(other->node, "frequency")) ||
+        !node_equal(node_get(o->node, "growth"), node_get(other->node, "growth")))
+        return false;
+    for (size_t r = 0; r < o->refs.n; r++) {
+        const struct reference *ref = &o->refs.at[r];
+        const char *part = ref->frequency ? PART_FREQUENCY : NULL;
+        if (text_starts(ref->path, "frequency") &&
+            compiled_part(&p, ref->id, part) != compiled_part(&q, ref->id, part))
             return false;
-        for (size_t r = 0; r < u->object->refs.n; r++) {
-            const struct reference *ref = &u->object->refs.at[r];
-            const struct building p = {.figures = m->f, .variant = first->variant};
-            const struct building q = {.figures = m->f, .variant = u->variant};
-            if (text_starts(ref->path, "frequency") &&
-                compiled_of(&p, ref->id) != compiled_of(&q, ref->id))
-                return false;
-        }
     }
     return true;
 }
 
-/* --- the mean hazard --- */
-
-static void add_frequency(struct mixing *m, bool same)
+/* Is how often the hazard occurs the same in all combinations? */
+static bool same_frequency(const struct mixing *m)
 {
-    const figure_id *ids = gather(m, offsetof(struct hazard_exports, frequency));
-    node_id n = same ? figure_at(m->f, ids[0])->node : weighted(m, ids, dim_frequency);
-    m->exports->frequency =
-        compiled_add(&m->b, PROPERTY_FREQUENCY, NULL, NULL, n, m->hazard->source, NULL);
+    for (size_t i = 0; i < m->combined->list.n; i++)
+        if (!same_in(m, 0, i))
+            return false;
+    return true;
 }
+
+static const struct compiled *frequency_in(const struct mixing *m, size_t i)
+{
+    const struct building under = {.figures = m->f, .variant = m->combined->list.at[i].variant};
+    return object_in(m, i) ? compiled_part(&under, m->object->id, PART_FREQUENCY) : NULL;
+}
+
+/* The mean over combinations, in one year or at all times. */
+static node_id mean_frequency(struct mixing *m, bool one_year, uint32_t year)
+{
+    struct graph *g = m->f->graph;
+    node_id *terms = NEW_ARRAY(m->f->arena, m->combined->list.n, node_id);
+    size_t n = 0;
+    for (size_t i = 0; i < m->combined->list.n; i++) {
+        const struct compiled *u = frequency_in(m, i);
+        const struct frequency_exports *x = u ? u->exports : NULL;
+        if (x)
+            terms[n++] = graph_op2(g, OP_MULTIPLY, m->weights[i],
+                                   one_year && x->yearly ? x->yearly[year] : x->mean);
+    }
+    if (n == 0)
+        return compile_const(&m->b, 0, dim_frequency, NULL);
+    return n == 1 ? terms[0] : graph_op(g, OP_SUM, n, terms);
+}
+
+static void find_weights(struct mixing *m)
+{
+    m->weights = NEW_ARRAY(m->f->arena, m->combined->list.n, node_id);
+    for (size_t i = 0; i < m->combined->list.n; i++)
+        m->weights[i] = weight_of(m, &m->combined->list.at[i]);
+}
+
+static const node_id *mean_frequencies(struct mixing *m)
+{
+    const struct register_settings *s = m->f->base->settings;
+    uint32_t years = horizon_length(s);
+    bool yearly = false;
+    for (size_t i = 0; i < m->combined->list.n; i++) {
+        const struct compiled *u = frequency_in(m, i);
+        yearly = yearly || (u && ((const struct frequency_exports *)u->exports)->yearly);
+    }
+    if (!yearly)
+        return NULL;
+    node_id *all = NEW_ARRAY(m->f->arena, years, node_id);
+    for (uint32_t y = 0; y < years; y++) {
+        all[y] = mean_frequency(m, true, y);
+        compiled_add(&m->b, PROPERTY_FREQUENCY, horizon_label(m->f->arena, s, y), NULL, all[y],
+                     NULL, NULL);
+    }
+    return all;
+}
+
+static ohmen_status compile_frequencies(struct mixing *m, ohmen_error *e)
+{
+    ohmen_status status = OHMEN_OK;
+    for (size_t i = 0; status == OHMEN_OK && i < m->combined->list.n; i++) {
+        const struct combination *c = &m->combined->list.at[i];
+        const struct compiled *unused;
+        for (size_t k = 0; status == OHMEN_OK && k < c->n; k++)
+            status = figures_compile(m->f, m->b.variant->stem, c->states[k]->id, &unused, e);
+        if (status == OHMEN_OK && object_in(m, i))
+            status = compile_frequency_of(m->f, c->variant, object_in(m, i), e);
+    }
+    return status;
+}
+
+ohmen_status compile_mean_frequency(struct figures *f, const struct variant *v,
+                                    const struct object *o, const struct combinations *c,
+                                    ohmen_error *e)
+{
+    struct mixing m = {.f = f, .object = o, .hazard = o->data, .combined = c};
+    struct frequency_exports *x = NEW(f->arena, struct frequency_exports);
+    m.b = (struct building){.figures = f, .variant = v};
+    ohmen_status status = compile_frequencies(&m, e);
+    if (status != OHMEN_OK)
+        return status;
+    bool same = same_frequency(&m);
+    const struct compiled *first = same ? frequency_in(&m, 0) : NULL;
+    compiled_begin_part(f, v, o, o->id, PART_FREQUENCY, &m.b);
+    m.b.unit->exports = x;
+    if (same) {
+        *x = *(const struct frequency_exports *)first->exports;
+    } else {
+        find_weights(&m);
+        x->yearly = mean_frequencies(&m);
+        x->mean = mean_frequency(&m, false, 0);
+    }
+    m.b.unit->main =
+        compiled_add(&m.b, PROPERTY_FREQUENCY, NULL, NULL, x->mean, m.hazard->source, NULL);
+    compiled_end(&m.b);
+    return OHMEN_OK;
+}
+
+/* --- the mean hazard --- */
 
 static void add_outcome(struct mixing *m, size_t k, bool same)
 {
@@ -276,15 +374,12 @@ static void add_figures(struct mixing *m)
     struct hazard_exports *x = m->exports;
     struct arena *a = m->f->arena;
     bool same = same_frequency(m);
-    m->weights = NEW_ARRAY(a, m->combined->list.n, node_id);
-    for (size_t i = 0; i < m->combined->list.n; i++)
-        m->weights[i] = weight_of(m, &m->combined->list.at[i]);
+    find_weights(m);
     x->n_outcomes = m->hazard->outcomes.n;
     x->probability = NEW_ARRAY(a, x->n_outcomes, figure_id);
     x->frequency_of = NEW_ARRAY(a, x->n_outcomes, figure_id);
     x->damage_of = NEW_ARRAY(a, x->n_outcomes, figure_id);
     x->risk_of = NEW_ARRAY(a, x->n_outcomes, figure_id);
-    add_frequency(m, same);
     for (size_t k = 0; k < x->n_outcomes; k++)
         add_outcome(m, k, same);
     add_sums(m);
@@ -317,7 +412,7 @@ static void list_states(struct mixing *m)
         const struct combination *c = &m->combined->list.at[i];
         double share = fine ? 1 : 0;
         for (size_t k = 0; k < c->n && fine; k++)
-            share *= figure_value(m->f, share_of(m, c, k));
+            share *= figure_at_means(m->f, share_of(m, c, k));
         x->states[i] = (struct hazard_state){combination_name(m->f->arena, c), share, m->units[i]};
     }
 }
@@ -354,6 +449,8 @@ ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, con
     show_most(&m);
     compiled_begin(f, v, o, o->id, &m.b);
     m.b.unit->exports = m.exports;
+    m.b.unit->also = compiled_part(&m.b, o->id, PART_FREQUENCY);
+    m.exports->frequency = m.b.unit->also->main;
     add_figures(&m);
     m.b.unit->main = m.exports->risk;
     compiled_end(&m.b);

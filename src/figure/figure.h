@@ -220,7 +220,8 @@ bool variant_reaches(const struct variant *v, const char *id);
 /* Compiles an object (value, rate, type, element, scheme, hazard, state that varies) under a
  * variant and everything that it depends on. A hazard is the mean over those operating states
  * that the variant does not fix; every other object is what the variant says, states that are
- * not fixed left out (but the frequency of a hazard, where it asks for that, is the mean). OHMEN_COMPUTE names what this version cannot evaluate. */
+ * not fixed left out (but the frequency of a hazard, where it asks for that, is the mean).
+ * OHMEN_COMPUTE names what this version cannot evaluate. */
 ohmen_status figures_compile(struct figures *f, const struct variant *v, const char *id,
                              const struct compiled **out, ohmen_error *e);
 
@@ -246,8 +247,8 @@ figure_id compiled_figure(const struct figures *f, const struct compiled *u, enu
 /* --- hazards --- */
 
 /* A scheme works, or does not; with `sees_row` also: and its function sees the fault; with
- * `tripped_by` also: and the scheme of that name, its breakers and trip circuits taken as sound, works (and, with
- * `tripped_row`, sees the fault). */
+ * `tripped_by` also: and the scheme of that name, its breakers and trip circuits taken as sound,
+ * works (and, with `tripped_row`, sees the fault). */
 struct condition {
     const struct condition *before;
     const char *id;

@@ -50,7 +50,11 @@ bool reference_computes(const struct reference *r, const struct object *to);
 ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
                            struct compiled **out, ohmen_error *e);
 
-/* A hazard under its projected variant: the mean over its combinations. */
+/* How often a hazard occurs, and the hazard, under its projected variant: the mean over its
+ * combinations. Its frequency comes first. */
+ohmen_status compile_mean_frequency(struct figures *f, const struct variant *v,
+                                    const struct object *o, const struct combinations *c,
+                                    ohmen_error *e);
 ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, const struct object *o,
                                  const struct combinations *c, struct compiled **out,
                                  ohmen_error *e);

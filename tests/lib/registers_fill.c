@@ -43,10 +43,11 @@ static bool can_be(const struct generator *g, const struct field *f)
 static const char *const involved[] = {
     "undetected",     "detected",  "repair",   "plant-out-while-repaired",
     "out-of-service", "exercised", "test",     "unwanted",
-    "steady",         "disables",  "trips-on", NULL};
+    "steady",         "disables",  "trips-on", "growth",
+    "ageing",         NULL};
 /* Must agree with other fields: only where somebody puts them. */
 static const char *const agreed[] = {
-    "takes", "since", "when-known", "next", "revealed-by", "breaker-failure-of", NULL};
+    "takes", "repair", "since", "when-known", "next", "revealed-by", "breaker-failure-of", NULL};
 
 static bool is_wanted(struct generator *g, const struct field *f)
 {

@@ -13,7 +13,8 @@
 #include "random.h"
 #include "report/number.h"
 
-static const struct { double x; enum number_style style; const char *text; } numbers[] = {
+static const struct { double x; enum number_style style; const char *text;
+} numbers[] = {
     {0, STYLE_PLAIN, "0"},
     {-0.0, STYLE_PLAIN, "0"},
     {1, STYLE_PLAIN, "1"},
@@ -24,12 +25,12 @@ static const struct { double x; enum number_style style; const char *text; } num
     {0.009996, STYLE_PLAIN, "0.01"},
     {12345, STYLE_PLAIN, "12300"},
     {99949, STYLE_PLAIN, "99900"},
-    {99950, STYLE_PLAIN, "1e5"},     /* a tie: half to even gives 1000e2 */
+    {99950, STYLE_PLAIN, "1e5"}, /* a tie: half to even gives 1000e2 */
     {100000, STYLE_PLAIN, "1e5"},
     {123456789, STYLE_PLAIN, "1.23e8"},
-    {1.125, STYLE_PLAIN, "1.12"},    /* exactly half: to even */
+    {1.125, STYLE_PLAIN, "1.12"}, /* exactly half: to even */
     {1.375, STYLE_PLAIN, "1.38"},
-    {2.385, STYLE_PLAIN, "2.38"},    /* the double is 2.38499999999999978684 */
+    {2.385, STYLE_PLAIN, "2.38"}, /* the double is 2.38499999999999978684 */
     {1e-12, STYLE_PLAIN, "1e-12"},
     {5e-324, STYLE_PLAIN, "4.94e-324"},
     {1.7976931348623157e308, STYLE_PLAIN, "1.8e308"},
@@ -56,8 +57,12 @@ static const struct { double x; enum number_style style; const char *text; } num
     {0.00001, STYLE_PERCENT, "1e-3"},
     {-0.07, STYLE_PERCENT, "-7"},
     {1.234, STYLE_RATIO, "1.23"},
-    {2027, STYLE_YEAR, "2027"}, {2031.25, STYLE_YEAR, "2031.25"}, {2031.2385, STYLE_YEAR, "2031.24"},
-    {-44.5, STYLE_YEAR, "-44.5"}, {123456.125, STYLE_YEAR, "123456.12"}, {0, STYLE_YEAR, "0"},
+    {2027, STYLE_YEAR, "2027"},
+    {2031.25, STYLE_YEAR, "2031.25"},
+    {2031.2385, STYLE_YEAR, "2031.24"},
+    {-44.5, STYLE_YEAR, "-44.5"},
+    {123456.125, STYLE_YEAR, "123456.12"},
+    {0, STYLE_YEAR, "0"},
 };
 
 START_TEST(numbers_as_specified)

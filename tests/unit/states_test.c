@@ -256,7 +256,7 @@ START_TEST(projection)
     ck_assert(variant_reaches(loaded_variant(&l, 1, &less), "H"));
     ck_assert_str_eq(figure_name(l.figures, a, loaded_find(&l, "R2.fails@NEW+NET=storm")),
                      "R2.fails");
-    /* six of the hazard, and the mean; the elements and the rate once for each change */
+    /* six of the hazard, and the mean, each with its frequency as a unit of its own; the elements and the rate once for each change */
     struct loaded fresh;
     load_states(&fresh, a);
     const struct compiled *h = loaded_compile(&fresh, loaded_variant(&fresh, 0, NULL), "H");
@@ -267,7 +267,7 @@ START_TEST(projection)
         of_ct += text_equal(fresh.figures->units.at[i]->id, "CT");
         of_r1 += text_equal(fresh.figures->units.at[i]->id, "R1");
     }
-    ck_assert_uint_eq(of_h, 7);
+    ck_assert_uint_eq(of_h, 14);
     ck_assert_uint_eq(of_ct, 1);
     ck_assert_uint_eq(of_r1, 2);
     arena_free(a);
