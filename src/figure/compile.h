@@ -113,6 +113,11 @@ ohmen_status compile_group(struct figures *f, const struct variant *v, const str
                            struct compiled **out, ohmen_error *e);
 struct behaviour compile_behaviour(struct building *b, const struct making *m, struct span *span);
 
+struct wiring;
+/* "No row clears the fault" as a function of failures alone: every function sees it. */
+const struct diagram *hazard_uncleared(struct figures *f, const struct compiled *hazard,
+                                       struct wiring *w);
+
 /* --- schemes as Boolean functions (structure.c) --- */
 
 struct wiring {

@@ -369,6 +369,30 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
     return OHMEN_OK;
 }
 
+/* --- failures alone --- */
+
+const struct diagram *hazard_uncleared(struct figures *f, const struct compiled *hazard,
+                                       struct wiring *w)
+{
+    const struct hazard *h = hazard->object->data;
+    wiring_init(w, f, hazard->variant, &h->disables);
+    bfun uncleared = BFUN_TRUE;
+    size_t *order = rows_in_order(f->arena, h);
+    for (size_t i = 0; i < h->response.n; i++) {
+        const struct response_row *row = row_at(h, order[i]);
+        if (!row->cleared_by)
+            continue;
+        wiring_order(w, row->cleared_by);
+        bfun clears = wiring_works(w, row->cleared_by);
+        if (row->breaker_failure_of)
+            clears =
+                diagram_and(w->builder, clears,
+                            wiring_trips(w, row_named(h, row->breaker_failure_of)->cleared_by));
+        uncleared = diagram_and(w->builder, uncleared, diagram_not(w->builder, clears));
+    }
+    return diagram_freeze(f->arena, w->builder, 1, &uncleared);
+}
+
 /* --- schemes by themselves --- */
 
 static void add_scheme(struct building *b, struct scheme_exports *x, struct wiring *w)

@@ -256,7 +256,8 @@ START_TEST(projection)
     ck_assert(variant_reaches(loaded_variant(&l, 1, &less), "H"));
     ck_assert_str_eq(figure_name(l.figures, a, loaded_find(&l, "R2.fails@NEW+NET=storm")),
                      "R2.fails");
-    /* six of the hazard, and the mean, each with its frequency as a unit of its own; the elements and the rate once for each change */
+    /* six of the hazard, and the mean, each with its frequency as a unit of its own; the
+     * elements and the rate once for each change */
     struct loaded fresh;
     load_states(&fresh, a);
     const struct compiled *h = loaded_compile(&fresh, loaded_variant(&fresh, 0, NULL), "H");
