@@ -354,6 +354,7 @@ static void compile_parts(struct element_building *m)
     if (e->test && e->test->leaves_failed)
         x->left = stated(m->b, PROPERTY_LEFT, e->test->leaves_failed, e->test->source);
     x->revealed = revealed(m);
+    x->in_repair = share_in_repair(m);
     x->tested = e->test != NULL;
     x->every = e->test ? expr_constant(e->test->every->expr) : 0;
 }
@@ -372,7 +373,7 @@ static struct making making_of(struct element_building *m)
         .undetected = x->undetected, .finds = x->finds, .revealed = x->revealed, .left = x->left};
     node_id out = stated_estimate(b, PROPERTY_OUT, m->x->out_of_service, m->x->source);
     push(&k, x->on_demand);
-    push(&k, share_in_repair(m));
+    push(&k, x->in_repair);
     x->other = either(b->figures->graph, out, share_in_test(m));
     push(&k, x->other);
     element_instants(b->figures, m->x, &k);
