@@ -188,8 +188,8 @@ static ohmen_status compile_frequency_of(struct figures *f, const struct variant
     return status;
 }
 
-/* Schemes export nothing but their unwanted operation to others: their elements do. An element comes with its common causes,
- * but not where one of these asks for it. */
+/* Schemes export nothing to others but their unwanted operation: their elements do. An element
+ * comes with its common causes, but not where one of these asks for it. */
 static ohmen_status compile_referred(struct figures *f, const struct variant *v,
                                      const struct object *from, const struct reference *r,
                                      const struct object *to, ohmen_error *e)

@@ -160,7 +160,8 @@ static bool scheme_trips(const struct world *w)
     return (holds_decider(w, w->root) && delivers(w, w->root, false)) || is_misled(w, w->root);
 }
 
-/* Sum over the states of elements i, i + 1, ...; `alone` >= 0: that one is asserted and no other. */
+/* Sum over the states of elements i, i + 1, ...; `alone` >= 0: that one is asserted and no
+ * other. */
 static double enumerate(struct world *w, int i, int alone)
 {
     if (i == w->n)
