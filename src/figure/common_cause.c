@@ -221,6 +221,13 @@ static void set_found(const struct group_building *g, struct making *k)
     }
 }
 
+static node_id in_repair(struct building *b, node_id detected, node_id repair, const char *q)
+{
+    node_id n = graph_op2(b->figures->graph, OP_MULTIPLY, detected, repair);
+    compiled_add(b, PROPERTY_IN_REPAIR, q, NULL, n, NULL, NULL);
+    return n;
+}
+
 static bool compile_shock(struct group_building *g, size_t n, const size_t *set, struct shock *out)
 {
     struct figures *f = g->b->figures;
@@ -240,7 +247,11 @@ static bool compile_shock(struct group_building *g, size_t n, const size_t *set,
     for (size_t i = 0; i < n; i++)
         members[i] = g->x->of.at[set[i]];
     const char *q = joined(f->arena, &g->x->of, n, set);
-    *out = (struct shock){arena_printf(f->arena, "%s.%s", g->object->id, q), n, members, {0}};
+    *out = (struct shock){.name = arena_printf(f->arena, "%s.%s", g->object->id, q),
+                          .n = n,
+                          .members = members,
+                          .detected = parts[DETECTED],
+                          .in_repair = NODE_NONE};
     struct making k = {.undetected = parts[UNDETECTED],
                        .finds = NODE_NONE,
                        .revealed = NODE_NONE,
@@ -255,8 +266,8 @@ static bool compile_shock(struct group_building *g, size_t n, const size_t *set,
     if (parts[ON_DEMAND] != NODE_NONE)
         k.standing[k.n_standing++] = parts[ON_DEMAND];
     if (parts[DETECTED] != NODE_NONE)
-        k.standing[k.n_standing++] =
-            graph_op2(f->graph, OP_MULTIPLY, parts[DETECTED], slowest_repair(g, n, set));
+        k.standing[k.n_standing++] = out->in_repair =
+            in_repair(g->b, parts[DETECTED], slowest_repair(g, n, set), q);
     set_found(g, &k);
     struct span span;
     out->fails = compile_behaviour(g->b, &k, &span);
@@ -401,11 +412,13 @@ static void compile_alone_unit(struct figures *f, const struct variant *v, const
         parts[p] = n == NODE_NONE ? n : remaining(&b, groups, o->id, p, n);
     }
     k.undetected = parts[UNDETECTED];
+    x->detected = parts[DETECTED];
+    x->in_repair = NODE_NONE;
     if (parts[ON_DEMAND] != NODE_NONE)
         k.standing[k.n_standing++] = parts[ON_DEMAND];
     if (parts[DETECTED] != NODE_NONE && !((const struct element *)o->data)->out_while_repaired)
-        k.standing[k.n_standing++] =
-            graph_op2(f->graph, OP_MULTIPLY, parts[DETECTED], whole->repair);
+        k.standing[k.n_standing++] = x->in_repair =
+            in_repair(&b, parts[DETECTED], whole->repair, "alone");
     if (whole->other != NODE_NONE)
         k.standing[k.n_standing++] = whole->other;
     element_instants(f, o->data, &k);

@@ -73,10 +73,10 @@ node_id compile_expr(struct building *b, const struct expr *e)
     case EXPR_LOG: return compile_call(b, OP_LOG, e);
     case EXPR_SQRT: return compile_call(b, OP_SQRT, e);
     case EXPR_LOOKUP: return compile_call(b, OP_LOOKUP, e);
-    case EXPR_WAS:
-    case EXPR_UNWANTED: break;
+    case EXPR_UNWANTED: return compile_unwanted_expr(b, e);
+    case EXPR_WAS: break;
     }
-    return NODE_NONE; /* refused before: refuse_unsupported */
+    return NODE_NONE; /* a change has replaced `was` */
 }
 
 /* What is stated in two places is two figures with a source each, though it be the same. */
@@ -111,59 +111,6 @@ static const char *expr_reads(struct arena *a, const struct expr *e)
 const char *quantity_reads(struct figures *f, const struct quantity *q)
 {
     return q->shape == SHAPE_EXPRESSION ? expr_reads(f->arena, q->expr) : q->text;
-}
-
-/* --- what is stored only --- */
-
-/* The first quantity of an object that this version does not evaluate. */
-struct unsupported {
-    struct arena *arena;
-    const char *path, *text; /* "response/main/sees/is", "unwanted(MAIN)"; or NULL */
-};
-
-static void look_for_unsupported(void *ctx, const struct expr *e)
-{
-    struct unsupported *u = ctx;
-    if (e->op == EXPR_UNWANTED && !u->text)
-        u->text = arena_printf(u->arena, "unwanted(%s)", e->name);
-}
-
-static enum walk look_at_field(void *ctx, const struct visit *v)
-{
-    struct unsupported *u = ctx;
-    if (v->field->flags & LATER)
-        return WALK_PAST;
-    if (v->field->type != FIELD_QUANTITY || u->text)
-        return WALK_INTO;
-    const struct quantity *q = *(struct quantity *const *)v->member;
-    if (q->shape == SHAPE_EXPRESSION && q->expr)
-        expr_walk(q->expr, look_for_unsupported, u);
-    if (u->text)
-        u->path = arena_str(u->arena, v->path);
-    return WALK_INTO;
-}
-
-/* Only `unwanted` refers to something that must be a scheme and nothing else: most objects
- * need not be walked. */
-static bool may_be_unsupported(const struct object *o)
-{
-    for (size_t i = 0; i < o->refs.n; i++)
-        if (o->refs.at[i].kinds == KIND_BIT(KIND_SCHEME))
-            return true;
-    return false;
-}
-
-static ohmen_status refuse_unsupported(struct figures *f, const struct object *o, ohmen_error *e)
-{
-    struct unsupported u = {.arena = f->arena};
-    struct walker w = {.ctx = &u, .enter = look_at_field};
-    if (may_be_unsupported(o))
-        walk_table(f->arena, kinds[o->kind].table, o->node, o->data, &w);
-    if (!u.text)
-        return OHMEN_OK;
-    return error_set(e, OHMEN_COMPUTE,
-                     "%s.%s uses %s, which this version stores but does not evaluate", o->id,
-                     u.path, u.text);
 }
 
 /* --- objects --- */
@@ -250,15 +197,15 @@ ohmen_status compile_frequency_of(struct figures *f, const struct variant *v,
     return status;
 }
 
-/* Schemes export nothing to others: their elements do. An element comes with its common causes,
- * but not where one of these asks for it. */
+/* Schemes export nothing to others but their unwanted operation: their elements do. An element
+ * comes with its common causes, but not where one of these asks for it. */
 static ohmen_status compile_referred(struct figures *f, const struct variant *v,
                                      const struct object *from, const struct reference *r,
                                      const struct object *to, ohmen_error *e)
 {
     const struct compiled *unused;
     if (to->kind == KIND_SCHEME)
-        return compile_references(f, v, to, e);
+        return r->unwanted ? compile_unwanted(f, v, to, e) : compile_references(f, v, to, e);
     if (to->kind == KIND_HAZARD && r->frequency)
         return compile_frequency_of(f, v, to, e);
     ohmen_status status = figures_compile(f, v, to->id, &unused, e);
@@ -284,9 +231,6 @@ static ohmen_status compile_one_reference(struct figures *f, const struct varian
 ohmen_status compile_references_at(struct figures *f, const struct variant *v,
                                    const struct object *o, const char *path, ohmen_error *e)
 {
-    ohmen_status fine = refuse_unsupported(f, o, e);
-    if (fine != OHMEN_OK)
-        return fine;
     for (size_t i = 0; i < o->refs.n; i++) {
         const struct reference *r = &o->refs.at[i];
         const struct object *to = model_find(v->model, r->id);

@@ -32,9 +32,12 @@ ohmen_status variant_project(struct figures *f, const struct variant *v, const c
                              const struct variant **out, ohmen_error *e);
 
 /* Units beside the main one of an object: the frequency of a hazard, which elements may ask for;
- * what an element does beside its common causes. NULL: the main one. */
+ * what an element does beside its common causes; unwanted operation of elements, types and schemes;
+ * schemes whose elements are repaired. NULL: the main one. */
 #define PART_FREQUENCY "frequency"
 #define PART_ALONE "alone"
+#define PART_UNWANTED "unwanted"
+#define PART_REPAIRABLE "repairable"
 void compiled_begin_part(struct figures *f, const struct variant *projected, const struct object *o,
                          const char *id, const char *part, struct building *b);
 
@@ -43,8 +46,7 @@ const struct compiled *compiled_of(const struct building *b, const char *id);
 const struct compiled *compiled_part(const struct building *b, const char *id, const char *part);
 node_id compiled_main_node(const struct building *b, const char *id);
 
-/* Compiles everything that an object refers to for computing. OHMEN_COMPUTE when one of its
- * quantities is of a sort that this version stores but does not evaluate. */
+/* Compiles everything that an object refers to for computing. */
 ohmen_status compile_references(struct figures *f, const struct variant *v, const struct object *o,
                                 ohmen_error *e);
 
@@ -104,6 +106,7 @@ struct making {
 };
 /* Its own kind, else that of its type: index into element_kinds, or -1. */
 int element_kind(const struct model *m, const struct element *x);
+bool element_is_breaker(const struct model *m, const struct element *x);
 /* Does it only carry out the trip command: a breaker or its trip circuit? */
 bool element_is_tripped(const struct model *m, const struct element *x);
 /* Sets tested, when and dated of a making as the element's documents say. */
@@ -117,6 +120,18 @@ struct wiring;
 /* "No row clears the fault" as a function of failures alone: every function sees it. */
 const struct diagram *hazard_uncleared(struct figures *f, const struct compiled *hazard,
                                        struct wiring *w);
+
+/* --- unwanted operation (unwanted.c), repairs (repairable.c) --- */
+
+/* The part "unwanted" of an element, a type or a scheme, and all that it needs. Of an element or
+ * a type: what it refers to has been compiled. */
+ohmen_status compile_unwanted(struct figures *f, const struct variant *v, const struct object *o,
+                              ohmen_error *e);
+/* unwanted(SCHEME; class frequency; ...): the part of the scheme has been compiled. */
+node_id compile_unwanted_expr(struct building *b, const struct expr *e);
+/* The part "repairable" of a scheme. OHMEN_UNKNOWN when no element of it is repaired. */
+ohmen_status compile_repairable(struct figures *f, const struct variant *v, const struct object *o,
+                                ohmen_error *e);
 
 /* --- schemes as Boolean functions (structure.c) --- */
 
@@ -140,6 +155,11 @@ bfun wiring_works(struct wiring *w, const char *id);
 /* The same with breakers and trip circuits taken as sound: the protection operates. */
 bfun wiring_trips(struct wiring *w, const char *id);
 bfun wiring_sees(struct wiring *w, const char *row);
+/* The variable of an event, which is made when it is first met. */
+uint32_t wiring_variable(struct wiring *w, const struct event *event);
+/* All events of which any one makes the element fail: itself first. */
+struct events ARRAY_BODY(struct event);
+void wiring_events(struct wiring *w, const char *element, struct events *out);
 /* The arguments of the diagram, in order of variables; those of `sees` and of what the hazard
  * disables are figures of the unit under construction, and get their behaviour here. */
 node_id *wiring_arguments(struct building *b, struct wiring *w);

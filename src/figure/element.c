@@ -71,11 +71,20 @@ int element_kind(const struct model *m, const struct element *x)
     return x->kind >= 0 || !t ? x->kind : t->kind;
 }
 
-bool element_is_tripped(const struct model *m, const struct element *x)
+static bool is_kind(const struct model *m, const struct element *x, const char *word)
 {
     int kind = element_kind(m, x);
-    return kind >= 0 && (text_equal(element_kinds[kind], "breaker") ||
-                         text_equal(element_kinds[kind], "trip-circuit"));
+    return kind >= 0 && text_equal(element_kinds[kind], word);
+}
+
+bool element_is_breaker(const struct model *m, const struct element *x)
+{
+    return is_kind(m, x, "breaker");
+}
+
+bool element_is_tripped(const struct model *m, const struct element *x)
+{
+    return is_kind(m, x, "breaker") || is_kind(m, x, "trip-circuit");
 }
 
 /* --- types --- */
@@ -355,6 +364,7 @@ static void compile_parts(struct element_building *m)
     if (e->test && e->test->leaves_failed)
         x->left = stated(m->b, PROPERTY_LEFT, e->test->leaves_failed, e->test->source);
     x->revealed = revealed(m);
+    x->in_repair = share_in_repair(m);
     x->tested = e->test != NULL;
     x->every = e->test ? expr_constant(e->test->every->expr) : 0;
 }
@@ -373,7 +383,7 @@ static struct making making_of(struct element_building *m)
         .undetected = x->undetected, .finds = x->finds, .revealed = x->revealed, .left = x->left};
     node_id out = stated_estimate(b, PROPERTY_OUT, m->x->out_of_service, m->x->source);
     push(&k, x->on_demand);
-    push(&k, share_in_repair(m));
+    push(&k, x->in_repair);
     x->other = either(b->figures->graph, out, share_in_test(m));
     push(&k, x->other);
     element_instants(b->figures, m->x, &k);

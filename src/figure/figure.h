@@ -40,6 +40,20 @@
     X(STANDING, "standing", "probability of failure that does not change with time")               \
     X(COURSE, "course", "probability of failure over time: here at the start of the horizon")      \
     X(BETA, "beta", "share of failures with a common cause")                                       \
+    X(UNWANTED, "unwanted",                                                                        \
+      "how often an element or a scheme operates unwantedly by itself, and in tests")              \
+    X(UNWANTED_PER_EVENT, "unwanted-per-event",                                                    \
+      "probability of unwanted operation per event of a stress class")                             \
+    X(ASSERTS, "asserts",                                                                          \
+      "probability that an element which has not failed asserts itself in an event")               \
+    X(AVAILABILITY, "availability",                                                                \
+      "share of time in which no repair keeps a scheme from working")                              \
+    X(UNAVAILABILITY, "unavailability",                                                            \
+      "share of time in which repairs keep a scheme from working")                                 \
+    X(FAILURE_FREQUENCY, "failure-frequency",                                                      \
+      "how often a detected failure makes a scheme cease to work")                                 \
+    X(OUTAGE_TIME, "outage-time",                                                                  \
+      "mean time in which repairs keep a scheme from working, once they do")                       \
     X(FREQUENCY, "frequency", "how often a hazard, or one of its outcomes, occurs")                \
     X(END, "end", "probability of one end of the event tree, given the hazard")                    \
     X(PROBABILITY, "probability", "probability of an outcome, given the hazard")                   \
@@ -98,7 +112,8 @@ struct element_exports {
     struct behaviour whole; /* all of its failures, whatever their cause */
     /* Its parts, or NODE_NONE. The two rates are before any split by common causes. */
     node_id on_demand, undetected, detected, repair, finds, revealed, left;
-    node_id other; /* out of service, in test: never of a common cause; or NODE_NONE */
+    node_id other;     /* out of service, in test: never of a common cause; or NODE_NONE */
+    node_id in_repair; /* share of time; or NODE_NONE */
     bool tested;
     double every; /* years between tests; 0: none */
     struct span span;
@@ -110,6 +125,7 @@ struct shock {
     size_t n;
     const char *const *members; /* in byte order */
     struct behaviour fails;
+    node_id detected, in_repair; /* or NODE_NONE */
 };
 struct group_exports {
     size_t n;
@@ -150,7 +166,15 @@ struct variant {
     struct strmap *projections; /* id -> struct variant, where states vary */
 };
 
-/* One compiled object. */
+/* The roots of one diagram as conditions, for formulas. */
+struct conditions {
+    node_id diagram;
+    size_t n_events;
+    const struct event *events;
+    const char *const *texts; /* by root */
+};
+
+/* One compiled object, or a part of it. */
 struct compiled {
     const struct object *object; /* of the variant; NULL for a decision's own section */
     const char *id;
@@ -161,7 +185,9 @@ struct compiled {
     void *exports;     /* struct hazard_exports, element_exports, group_exports, ... by kind */
     figure_id main;    /* value, rate, fails, risk */
     uint32_t n_inputs; /* uncertain inputs of its own */
-    const struct compiled *also; /* another unit with figures of the same object, or NULL */
+    const struct compiled *also;         /* another unit with figures of the same object, or NULL */
+    const char *part;                    /* NULL: the main unit */
+    ARRAY(struct conditions) conditions; /* of its diagrams, where `exports` does not tell */
 };
 
 struct figures {
@@ -270,10 +296,11 @@ struct end {
 };
 /* A variable of a hazard's or a scheme's diagram. */
 enum event_kind {
-    EVENT_ELEMENT, /* the element fails; of one with common causes: alone, by itself */
-    EVENT_SHOCK,   /* elements fail together */
-    EVENT_SEES,    /* true when the function of a row sees the fault */
-    EVENT_DISABLED /* the hazard puts an element out of action */
+    EVENT_ELEMENT,  /* the element fails; of one with common causes: alone, by itself */
+    EVENT_SHOCK,    /* elements fail together */
+    EVENT_SEES,     /* true when the function of a row sees the fault */
+    EVENT_DISABLED, /* the hazard puts an element out of action */
+    EVENT_ASSERTS   /* true when a stress makes a sound element assert itself */
 };
 struct event {
     enum event_kind kind;

@@ -107,7 +107,8 @@ void compiled_begin_part(struct figures *f, const struct variant *projected, con
                          const char *id, const char *part, struct building *b)
 {
     struct compiled *u = NEW(f->arena, struct compiled);
-    *u = (struct compiled){.object = o, .id = id, .variant = projected, .main = FIGURE_NONE};
+    *u = (struct compiled){
+        .object = o, .id = id, .variant = projected, .main = FIGURE_NONE, .part = part};
     u->first = (figure_id)f->list.n;
     u->section = graph_section_begin(f->graph, (uint32_t)f->units.n);
     *array_push(f->arena, &f->units) = u;
@@ -124,7 +125,8 @@ void compiled_give_up(struct building *b)
 {
     struct figures *f = b->figures;
     compiled_end(b);
-    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, b->unit->id, NULL, b->variant), NULL);
+    const struct compiled *u = b->unit;
+    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, u->id, u->part, b->variant), NULL);
 }
 
 static void name_node(struct figures *f, node_id node, figure_id id)
@@ -257,14 +259,16 @@ static bool is_probability(enum property p)
     return p == PROPERTY_FAILS || p == PROPERTY_SHARE || p == PROPERTY_ON_DEMAND ||
            p == PROPERTY_IN_REPAIR || p == PROPERTY_IN_TEST || p == PROPERTY_OUT ||
            p == PROPERTY_FINDS || p == PROPERTY_LEFT || p == PROPERTY_STANDING ||
-           p == PROPERTY_COURSE || p == PROPERTY_BETA;
+           p == PROPERTY_COURSE || p == PROPERTY_BETA || p == PROPERTY_UNWANTED_PER_EVENT ||
+           p == PROPERTY_ASSERTS || p == PROPERTY_AVAILABILITY || p == PROPERTY_UNAVAILABILITY;
 }
 
 static bool must_not_be_negative(enum property p)
 {
     return p == PROPERTY_FREQUENCY || p == PROPERTY_DAMAGE || p == PROPERTY_RATE ||
            p == PROPERTY_UNDETECTED || p == PROPERTY_DETECTED || p == PROPERTY_REPAIR ||
-           p == PROPERTY_REVEALED || p == PROPERTY_INVEST || p == PROPERTY_RUNNING;
+           p == PROPERTY_UNWANTED || p == PROPERTY_REVEALED || p == PROPERTY_INVEST ||
+           p == PROPERTY_RUNNING;
 }
 
 /* What an expression of names gives can only be seen here. */

@@ -117,6 +117,72 @@ ohmen_status compiled_find(struct figures *f, const struct compiled *u, const ch
                      nearest_hint(f->arena, &near));
 }
 
+/* --- parts that are compiled only where somebody asks --- */
+
+typedef ohmen_status compile_part(struct figures *f, const struct variant *v,
+                                  const struct object *o, ohmen_error *e);
+
+static const struct part {
+    enum property property;
+    unsigned kinds;
+    const char *part;
+    compile_part *compile;
+} parts[] = {
+#define REPAIRED(p)                                                                                \
+    {                                                                                              \
+        p, KIND_BIT(KIND_SCHEME), PART_REPAIRABLE, compile_repairable                              \
+    }
+#define ASSERTED(p, kinds)                                                                         \
+    {                                                                                              \
+        p, kinds, PART_UNWANTED, compile_unwanted                                                  \
+    }
+#define STATED (KIND_BIT(KIND_ELEMENT) | KIND_BIT(KIND_TYPE))
+    ASSERTED(PROPERTY_UNWANTED, KIND_BIT(KIND_SCHEME) | STATED),
+    ASSERTED(PROPERTY_UNWANTED_PER_EVENT, KIND_BIT(KIND_SCHEME) | STATED),
+    ASSERTED(PROPERTY_ASSERTS, KIND_BIT(KIND_SCHEME)),
+    REPAIRED(PROPERTY_AVAILABILITY),
+    REPAIRED(PROPERTY_UNAVAILABILITY),
+    REPAIRED(PROPERTY_FAILURE_FREQUENCY),
+    REPAIRED(PROPERTY_OUTAGE_TIME),
+#undef REPAIRED
+#undef ASSERTED
+#undef STATED
+};
+
+/* Is `word` what stands before the first dot? */
+static bool begins_with(const char *rest, const char *word)
+{
+    size_t n = strlen(word);
+    return strncmp(rest, word, n) == 0 && (rest[n] == 0 || rest[n] == '.');
+}
+
+/* The part of an object in which such a figure is, or NULL. */
+static const struct part *part_of(const struct object *o, const char *rest)
+{
+    for (size_t i = 0; i < sizeof parts / sizeof *parts; i++)
+        if ((parts[i].kinds & KIND_BIT(o->kind)) &&
+            begins_with(rest, properties[parts[i].property].word))
+            return &parts[i];
+    return NULL;
+}
+
+/* Goes from the main unit of an object to the part in which the figure is. */
+static ohmen_status to_part(struct figures *f, const struct variant *v, const char *rest,
+                            const struct compiled **u, ohmen_error *e)
+{
+    struct building under = {.figures = f, .variant = v};
+    const struct part *p = part_of((*u)->object, rest);
+    if (!p)
+        return OHMEN_OK;
+    ohmen_status status = p->compile(f, v, (*u)->object, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct compiled *part = (struct compiled *)compiled_part(&under, (*u)->id, p->part);
+    part->also = *u;
+    *u = part;
+    return OHMEN_OK;
+}
+
 ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
 {
     struct name_parts p;
@@ -132,6 +198,8 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
         return unknown_object(f, p.id, e);
     else
         status = figures_compile(f, v, p.id, &u, e);
+    if (status == OHMEN_OK && u->object)
+        status = to_part(f, v, p.rest, &u, e);
     return status == OHMEN_OK ? compiled_find(f, u, p.rest, out, e) : status;
 }
 

@@ -190,6 +190,39 @@ static void write_course_pick(struct writing *w, node_id diagram)
     text_add(w->out, figure_name(w->f, w->arena, id));
 }
 
+/* A diagram of a part that says itself what its roots are. */
+static void write_stated_pick(struct writing *w, const struct conditions *c, uint32_t root,
+                              bool over)
+{
+    text_printf(w->out, "probability(%s)", c->texts[root]);
+    if (c->texts[root][0] != '"')
+        meet_events(w, c->n_events, c->events, over,
+                    arena_printf(w->arena, "(%s)", c->texts[root]));
+}
+
+static const struct conditions *conditions_of(const struct compiled *u, node_id diagram)
+{
+    for (size_t i = 0; i < u->conditions.n; i++)
+        if (u->conditions.at[i].diagram == diagram)
+            return &u->conditions.at[i];
+    return NULL;
+}
+
+static void write_condition_of(struct writing *w, const struct compiled *u, node_id diagram,
+                               uint32_t root, bool over)
+{
+    const struct conditions *c = conditions_of(u, diagram);
+    if (c) {
+        write_stated_pick(w, c, root, over);
+        return;
+    }
+    switch (u->object ? u->object->kind : KIND_COUNT) {
+    case KIND_HAZARD: write_hazard_pick(w, u, root, over); break;
+    case KIND_SCHEME: write_scheme_pick(w, u, over); break;
+    default: write_course_pick(w, diagram); break;
+    }
+}
+
 /* "probability(...)" of the condition under which an end is reached; "over(0 a; 1 a; ...)" its
  * average over that time. */
 static void write_pick(struct writing *w, node_id n)
@@ -204,11 +237,7 @@ static void write_pick(struct writing *w, node_id n)
     if (windows.n)
         text_printf(w->out, "over(%s a; %s a; ", text_double(from, windows.at[window].from),
                     text_double(to, windows.at[window].to));
-    switch (u->object ? u->object->kind : KIND_COUNT) {
-    case KIND_HAZARD: write_hazard_pick(w, u, root, windows.n > 0); break;
-    case KIND_SCHEME: write_scheme_pick(w, u, windows.n > 0); break;
-    default: write_course_pick(w, diagram); break;
-    }
+    write_condition_of(w, u, diagram, root, windows.n > 0);
     text_add(w->out, windows.n ? ")" : "");
 }
 

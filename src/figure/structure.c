@@ -27,8 +27,7 @@ static const struct model *model_of(const struct wiring *w)
     return w->under.variant->model;
 }
 
-/* The variable of an event, which is made when it is first met. */
-static uint32_t variable_of(struct wiring *w, const struct event *event)
+uint32_t wiring_variable(struct wiring *w, const struct event *event)
 {
     uintptr_t known = (uintptr_t)strmap_get(&w->index, event->name);
     if (known)
@@ -68,8 +67,6 @@ static struct event disabled_event(struct wiring *w, const char *id)
     return (struct event){EVENT_DISABLED, id, arena_printf(arena_of(w), "spared.%s", id), {0}};
 }
 
-struct events ARRAY_BODY(struct event);
-
 static bool is_hit(const struct shock *s, const char *element)
 {
     for (size_t i = 0; i < s->n; i++)
@@ -78,8 +75,7 @@ static bool is_hit(const struct shock *s, const char *element)
     return false;
 }
 
-/* All events of which any one makes the element fail: itself first. */
-static void events_of(struct wiring *w, const char *id, struct events *out)
+void wiring_events(struct wiring *w, const char *id, struct events *out)
 {
     struct groups groups = {0};
     *array_push(arena_of(w), out) = element_event(w, id);
@@ -99,10 +95,10 @@ static bfun element_works(struct wiring *w, const char *id)
 {
     struct events events = {0};
     bfun fails = BFUN_FALSE;
-    events_of(w, id, &events);
+    wiring_events(w, id, &events);
     for (size_t i = 0; i < events.n; i++)
         fails = diagram_or(w->builder, fails,
-                           diagram_variable(w->builder, variable_of(w, &events.at[i])));
+                           diagram_variable(w->builder, wiring_variable(w, &events.at[i])));
     return diagram_not(w->builder, fails);
 }
 
@@ -119,9 +115,9 @@ static void order_structure(struct wiring *w, const struct structure *s)
 static void order_element(struct wiring *w, const char *id)
 {
     struct events events = {0};
-    events_of(w, id, &events);
+    wiring_events(w, id, &events);
     for (size_t i = 0; i < events.n; i++)
-        variable_of(w, &events.at[i]);
+        wiring_variable(w, &events.at[i]);
 }
 
 void wiring_order(struct wiring *w, const char *id)
@@ -188,7 +184,7 @@ bfun wiring_trips(struct wiring *w, const char *id)
 bfun wiring_sees(struct wiring *w, const char *row)
 {
     struct event event = sees_event(w, row);
-    return diagram_variable(w->builder, variable_of(w, &event));
+    return diagram_variable(w->builder, wiring_variable(w, &event));
 }
 
 /* --- arguments --- */
@@ -226,7 +222,7 @@ static void element_text(struct text *t, const struct wording *w, const char *id
     struct wiring events_only = {.under = {.figures = w->figures, .variant = w->variant},
                                  .disables = w->hazard ? &w->hazard->disables : NULL};
     struct events events = {0};
-    events_of(&events_only, id, &events);
+    wiring_events(&events_only, id, &events);
     text_add(t, events.n > 1 && !bare ? "(" : "");
     for (size_t i = 0; i < events.n; i++)
         text_printf(t, "%s%s", i ? " and " : "", events.at[i].name);

@@ -13,6 +13,8 @@ struct checking {
     const struct model *model;
     struct diags *diags;
     struct strmap dims; /* id of a value or rate -> struct known_dim */
+    struct strmap stress_classes; /* of elements and types; empty: not collected yet */
+    bool collected;
     unsigned depth;     /* of values that use values */
 };
 

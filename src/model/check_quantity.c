@@ -103,6 +103,51 @@ static bool dim_of_share(struct naming *n, const struct expr *e, struct place at
     return true;
 }
 
+/* --- stress classes --- */
+
+static void collect_classes(struct checking *c, const struct unwanted *u)
+{
+    for (size_t i = 0; u && i < u->per_event.n; i++)
+        strmap_set(c->arena, &c->stress_classes, u->per_event.keys[i], NULL);
+}
+
+/* All that an element or a type of the model knows; once. */
+static void collect_all_classes(struct checking *c)
+{
+    for (const struct model *m = c->collected ? NULL : c->model; m; m = m->below)
+        for (size_t i = 0; i < m->by_id.n; i++) {
+            const struct object *o = m->by_id.at[i].value;
+            if (o && o->kind == KIND_ELEMENT)
+                collect_classes(c, ((const struct element *)o->data)->unwanted);
+            else if (o && o->kind == KIND_TYPE)
+                collect_classes(c, ((const struct element_type *)o->data)->unwanted);
+        }
+    c->collected = true;
+}
+
+/* A frequency, whatever the scheme. A class that nothing knows is a slip of the pen. */
+static bool dim_of_unwanted(struct naming *n, const struct expr *e, struct place at,
+                            struct dim *out)
+{
+    struct checking *c = n->c;
+    *out = dim_frequency;
+    collect_all_classes(c);
+    for (size_t i = 0; i + 1 < e->n; i += 2) {
+        const struct expr *stress = e->args[i];
+        struct nearest near;
+        if (strmap_has(&c->stress_classes, stress->name))
+            continue;
+        nearest_init(&near, stress->name);
+        for (size_t k = 0; k < c->stress_classes.n; k++)
+            nearest_offer(&near, c->stress_classes.at[k].key);
+        diag_add(c->diags, place_inside(at, stress->column - e->column),
+                 "no element or type has a probability of unwanted operation \"per-event\" of "
+                 "the stress class \"%s\"%s",
+                 stress->name, nearest_hint(c->arena, &near));
+    }
+    return true;
+}
+
 static bool dim_of_name(void *ctx, const struct expr *e, struct place at, struct dim *out)
 {
     struct naming *n = ctx;
@@ -112,7 +157,7 @@ static bool dim_of_name(void *ctx, const struct expr *e, struct place at, struct
     case EXPR_FAILS: *out = dim_number; return true;
     case EXPR_FREQUENCY: *out = dim_frequency; return true;
     case EXPR_SHARE: return dim_of_share(n, e, at, out);
-    case EXPR_UNWANTED: *out = dim_frequency; return true;
+    case EXPR_UNWANTED: return dim_of_unwanted(n, e, at, out);
     default: return false;
     }
 }

@@ -140,6 +140,7 @@ struct collecting {
     const char *path;
     unsigned later; /* fields around this one that are not evaluated */
     bool frequency; /* in frequency(...) */
+    bool unwanted;  /* in unwanted(...) */
 };
 
 static void add_reference(struct collecting *c, const char *id, unsigned allowed, struct place at)
@@ -153,6 +154,7 @@ static void add_reference(struct collecting *c, const char *id, unsigned allowed
         .trace = (c->visit->field->flags & TRACE) != 0,
         .later = c->later > 0,
         .frequency = c->frequency || (c->visit->field->flags & FREQUENCY_ONLY) != 0,
+        .unwanted = c->unwanted,
         .place = at,
         .path = c->path};
 }
@@ -167,7 +169,11 @@ static void references_of_expr(void *ctx, const struct expr *e)
     case EXPR_NAME:
         add_reference(c, e->name, KIND_BIT(KIND_VALUE) | KIND_BIT(KIND_RATE), at);
         break;
-    case EXPR_UNWANTED: add_reference(c, e->name, KIND_BIT(KIND_SCHEME), at); break;
+    case EXPR_UNWANTED:
+        c->unwanted = true;
+        add_reference(c, e->name, KIND_BIT(KIND_SCHEME), at);
+        c->unwanted = false;
+        break;
     case EXPR_FAILS: add_reference(c, e->name, KIND_BIT(KIND_ELEMENT), at); break;
     case EXPR_SHARE: add_reference(c, e->name, KIND_BIT(KIND_RATE), at); break;
     case EXPR_FREQUENCY:

@@ -45,6 +45,7 @@ struct reference {
     bool trace;     /* computes nothing */
     bool later;     /* stands in a field that this version does not evaluate */
     bool frequency; /* asks only for the frequency of a hazard */
+    bool unwanted;  /* asks how often a scheme operates unwantedly */
     struct place place;
     const char *path; /* below the object; lives in the arena */
 };

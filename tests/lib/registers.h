@@ -7,8 +7,9 @@
  * depends on the clearance time, options that touch one another.
  *
  * Whatever hazards, options and decisions need can be evaluated by this version; what is
- * only stored (priors of other forms, elements without failures on demand, unwanted(...),
- * trees) stands in objects that no hazard leads to, or in fields that figures leave out. */
+ * only stored or depends on time (priors of other forms, elements without failures on
+ * demand, unwanted(...), trees) stands in objects that no hazard leads to, or in fields that
+ * figures leave out. */
 #ifndef TESTS_REGISTERS_H
 #define TESTS_REGISTERS_H
 

@@ -465,7 +465,12 @@ static void add_dated_elements(struct generator *g)
         put_node(g, m, "revealed-by", by);
     }
     put_node(g, section, "E-DATED", m);
-    put_node(g, section, "E-OTHER", make_pair(g, "per-demand", make_scalar(g, "2e-3")));
+    struct node *other = make_map(g), *per_event = make_map(g);
+    put_text(g, other, "per-demand", "2e-3");
+    put_text(g, per_event, "inrush", "0.015");
+    put_text(g, per_event, "through-fault", "3e-3");
+    put_node(g, other, "unwanted", make_pair(g, "per-event", per_event));
+    put_node(g, section, "E-OTHER", other);
 }
 
 /* A hazard whose second row backs up the breaker of the first one. */
