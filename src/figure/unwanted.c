@@ -243,6 +243,9 @@ static struct operation threshold(struct unwanted_building *u, const struct stru
         out.opened = clause_or(w, out.opened, parts[i].opened);
         out.decides = out.decides || parts[i].decides;
     }
+    for (size_t i = 0; s->k < s->n && out.decides && i < s->n; i++)
+        if (!parts[i].decides) /* beside others that decide, it waits to be asserted itself */
+            parts[i].passes = passes[i] = clause_of(false);
     out.passes = clause_at_least(w, s->k, s->n, passes);
     out.conducts = clause_at_least(w, s->k, s->n, conducts);
     out.caused =

@@ -102,6 +102,20 @@ static const char *document(const struct world *w)
 
 /* --- the oracle --- */
 
+static bool holds_decider(const struct world *w, const struct part *p)
+{
+    bool any = p->element >= 0 && w->decides[p->element];
+    for (int i = 0; i < p->n; i++)
+        any = any || holds_decider(w, p->of[i]);
+    return any;
+}
+
+/* A branch that holds no decider gives no trip beside branches that hold one. */
+static bool waits(const struct world *w, const struct part *p, const struct part *in)
+{
+    return in->k < in->n && holds_decider(w, in) && !holds_decider(w, p);
+}
+
 /* Does it give a trip, with every decider as it is, or as though it had asserted itself? */
 static bool delivers(const struct world *w, const struct part *p, bool all_decided)
 {
@@ -111,7 +125,7 @@ static bool delivers(const struct world *w, const struct part *p, bool all_decid
     }
     int met = 0;
     for (int i = 0; i < p->n; i++)
-        met += delivers(w, p->of[i], all_decided);
+        met += (all_decided || !waits(w, p->of[i], p)) && delivers(w, p->of[i], all_decided);
     return met >= p->k;
 }
 
@@ -131,17 +145,9 @@ static bool is_misled(const struct world *w, const struct part *p)
             misled += others == p->n;
         }
         misled += p->k < p->n && here;
-        met += here || delivers(w, p->of[i], false);
+        met += here || (!waits(w, p->of[i], p) && delivers(w, p->of[i], false));
     }
     return misled > 0 && (p->k == p->n || met >= p->k);
-}
-
-static bool holds_decider(const struct world *w, const struct part *p)
-{
-    bool any = p->element >= 0 && w->decides[p->element];
-    for (int i = 0; i < p->n; i++)
-        any = any || holds_decider(w, p->of[i]);
-    return any;
 }
 
 static bool is_in(const struct part *p, int element)
