@@ -133,6 +133,14 @@ node_id compile_unwanted_expr(struct building *b, const struct expr *e);
 ohmen_status compile_repairable(struct figures *f, const struct variant *v, const struct object *o,
                                 ohmen_error *e);
 
+/* --- consequences beside money (consequences.c) --- */
+
+#define PART_CONSEQUENCES "consequences"
+#define PART_SUPPLY "supply"
+#define PART_TOTAL "total"
+ohmen_status compile_consequences(struct figures *f, const struct variant *v,
+                                  const struct object *o, ohmen_error *e);
+
 /* --- schemes as Boolean functions (structure.c) --- */
 
 struct wiring {

@@ -65,6 +65,18 @@
       "damaging outcomes")                                                                         \
     X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
     X(RISK, "risk", "frequency times damage, of an outcome or a hazard")                           \
+    X(INTERRUPTIONS, "interruptions", "customers interrupted in a year, for long (IEEE 1366)")     \
+    X(MOMENTARY, "momentary-interruptions", "customers interrupted in a year, for a short time")   \
+    X(CUSTOMER_TIME, "customer-time", "time without supply in a year, summed over customers")      \
+    X(NOT_SUPPLIED, "energy-not-supplied", "energy not supplied in a year")                        \
+    X(SAIFI, "saifi", "interruptions of a customer in a year (IEEE 1366)")                         \
+    X(SAIDI, "saidi", "time without supply of a customer in a year (IEEE 1366)")                   \
+    X(CAIDI, "caidi", "mean time of an interruption (IEEE 1366)")                                  \
+    X(ASAI, "asai", "share of time in which a customer is supplied (IEEE 1366)")                   \
+    X(MAIFI, "maifi", "momentary interruptions of a customer in a year (IEEE 1366)")               \
+    X(DEATH, "individual-risk", "probability per year that a given person of a group dies")        \
+    X(INJURY, "injury-risk", "probability per year that a given person of a group is injured")     \
+    X(FATALITIES, "fatalities", "expected deaths in a group per year")                             \
     X(INVEST, "invest", "investment of an option")                                                 \
     X(RUNNING, "running", "running cost of an option per year")                                    \
     X(DISCOUNT, "discount", "interest per year")                                                   \

@@ -2,6 +2,8 @@
 /* Finding a figure by its name, and what this version does not use. */
 #include <string.h>
 
+#include "figure/consequences.h"
+#include "figure/importance.h"
 #include "figure/states.h"
 
 /* "ID.rest@A+S=x+[name]" cut into its parts. */
@@ -136,6 +138,10 @@ static const struct part {
     {                                                                                              \
         p, kinds, PART_UNWANTED, compile_unwanted                                                  \
     }
+#define HARM(p)                                                                                    \
+    {                                                                                              \
+        p, KIND_BIT(KIND_HAZARD), PART_CONSEQUENCES, compile_consequences                          \
+    }
 #define STATED (KIND_BIT(KIND_ELEMENT) | KIND_BIT(KIND_TYPE))
     ASSERTED(PROPERTY_UNWANTED, KIND_BIT(KIND_SCHEME) | STATED),
     ASSERTED(PROPERTY_UNWANTED_PER_EVENT, KIND_BIT(KIND_SCHEME) | STATED),
@@ -144,6 +150,14 @@ static const struct part {
     REPAIRED(PROPERTY_UNAVAILABILITY),
     REPAIRED(PROPERTY_FAILURE_FREQUENCY),
     REPAIRED(PROPERTY_OUTAGE_TIME),
+    HARM(PROPERTY_INTERRUPTIONS),
+    HARM(PROPERTY_MOMENTARY),
+    HARM(PROPERTY_CUSTOMER_TIME),
+    HARM(PROPERTY_NOT_SUPPLIED),
+    HARM(PROPERTY_DEATH),
+    HARM(PROPERTY_INJURY),
+    HARM(PROPERTY_FATALITIES),
+#undef HARM
 #undef REPAIRED
 #undef ASSERTED
 #undef STATED
@@ -183,6 +197,66 @@ static ohmen_status to_part(struct figures *f, const struct variant *v, const ch
     return OHMEN_OK;
 }
 
+/* --- what is made of all hazards --- */
+
+static ohmen_status all_hazards(struct figures *f, const struct compiled ***out, ohmen_error *e)
+{
+    const struct objects *hazards = &f->base->of[KIND_HAZARD];
+    const struct variant *base;
+    ohmen_status status = figures_variant(f, 0, NULL, &base, e);
+    *out = NEW_ARRAY(f->arena, hazards->n, const struct compiled *);
+    for (size_t i = 0; status == OHMEN_OK && i < hazards->n; i++)
+        status = figures_compile(f, base, hazards->at[i]->id, &(*out)[i], e);
+    return status;
+}
+
+/* The register's settings, its risk, or its supply: by the property that is asked for. */
+static ohmen_status register_unit(struct figures *f, const char *rest, const struct compiled **out,
+                                  ohmen_error *e)
+{
+    static const enum property of_supply[] = {
+        PROPERTY_SAIFI,     PROPERTY_SAIDI,         PROPERTY_CAIDI,
+        PROPERTY_ASAI,      PROPERTY_MAIFI,         PROPERTY_INTERRUPTIONS,
+        PROPERTY_MOMENTARY, PROPERTY_CUSTOMER_TIME, PROPERTY_NOT_SUPPLIED};
+    bool supply = false, risk = begins_with(rest, properties[PROPERTY_RISK].word);
+    const struct compiled **hazards;
+    for (size_t i = 0; i < sizeof of_supply / sizeof *of_supply; i++)
+        supply = supply || begins_with(rest, properties[of_supply[i]].word);
+    *out = figures_settings(f);
+    if (!supply && !risk)
+        return OHMEN_OK;
+    ohmen_status status = all_hazards(f, &hazards, e);
+    struct supply unused;
+    size_t n = f->base->of[KIND_HAZARD].n;
+    if (status == OHMEN_OK && supply)
+        status = figures_supply(f, n, hazards, &unused, e);
+    if (status != OHMEN_OK)
+        return status;
+    if (risk)
+        figures_total(f, n, hazards);
+    struct building under = {.figures = f, .variant = (*out)->variant};
+    *out = compiled_part(&under, REGISTER_ID, supply ? PART_SUPPLY : PART_TOTAL);
+    return OHMEN_OK;
+}
+
+static bool is_group(const struct figures *f, const char *id)
+{
+    return model_get(f->base, KIND_GROUP, id) != NULL;
+}
+
+static ohmen_status group_unit(struct figures *f, const char *id, const struct compiled **out,
+                               ohmen_error *e)
+{
+    const struct compiled **hazards;
+    struct harm_to *unused;
+    ohmen_status status = all_hazards(f, &hazards, e);
+    if (status == OHMEN_OK)
+        status = figures_people(f, f->base->of[KIND_HAZARD].n, hazards, &unused, e);
+    struct building under = {.figures = f, .variant = figures_settings(f)->variant};
+    *out = status == OHMEN_OK ? compiled_of(&under, id) : NULL;
+    return status;
+}
+
 ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
 {
     struct name_parts p;
@@ -193,7 +267,9 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
     if (status != OHMEN_OK)
         return status;
     if (text_equal(p.id, REGISTER_ID))
-        u = figures_settings(f);
+        status = register_unit(f, p.rest, &u, e);
+    else if (is_group(f, p.id))
+        status = group_unit(f, p.id, &u, e);
     else if (!model_find(v->model, p.id))
         return unknown_object(f, p.id, e);
     else

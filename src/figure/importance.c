@@ -142,8 +142,6 @@ double effect_reduction(const struct effects *all, const struct effect *x)
 
 /* --- the whole register --- */
 
-#define PART_TOTAL "total"
-
 figure_id figures_total(struct figures *f, size_t n, const struct compiled *const *hazards)
 {
     const struct variant *base;

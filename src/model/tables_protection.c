@@ -334,9 +334,9 @@ static const struct field outcome_fields[] = {
     F(struct outcome, name, "name", TEXT, "What has happened", .flags = REQUIRED),
     F(struct outcome, damage, "damage", ROWS, "What it costs", .part = &damage_part),
     F(struct outcome, interruptions, "interruptions", ROWS, "Who is without supply for how long",
-      .part = &interruption_part, .flags = LATER),
+      .part = &interruption_part),
     F(struct outcome, harm, "harm", ROWS, "Harm to people, by group", .part = &harm_part,
-      .kinds = KIND_BIT(KIND_GROUP), .flags = LATER),
+      .kinds = KIND_BIT(KIND_GROUP)),
     NOTE_FIELD(struct outcome),
 };
 static const struct table table_outcome =
