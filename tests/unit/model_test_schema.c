@@ -169,7 +169,7 @@ START_TEST(rows_are_spread_out_by_name)
     ck_assert_ptr_nonnull(
         strstr(text, "| `damage.NAME.category` | name | yes | yes | Category of damage"));
     ck_assert_ptr_nonnull(strstr(text, "| `damage.NAME.is` | money, not below 0 | one of | yes |"));
-    ck_assert_ptr_nonnull(strstr(text, "| `harm` | map by id of a group: *harm* |  | stored |"));
+    ck_assert_ptr_nonnull(strstr(text, "| `harm` | map by id of a group: *harm* |  | yes |"));
     text = filled(&s, "<!-- fields: plan -->\n<!-- end -->\n", &problem);
     ck_assert_ptr_nonnull(strstr(text, "| `budgets` | map by year: plain money, not below 0 |"));
     text = filled(&s, "<!-- fields: branch -->\n<!-- end -->\n", &problem); /* holds itself */
