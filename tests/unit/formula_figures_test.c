@@ -17,8 +17,11 @@
 static const char *root_folder;
 
 struct counted {
-    size_t formulas, leaves, probabilities;
+    size_t formulas, leaves, probabilities, averages;
 };
+
+/* What graph.h promises of averages over time. */
+#define AVERAGED 1e-11L
 
 static const struct model *load(struct arena *a, size_t n, const struct node *const *roots)
 {
@@ -72,40 +75,78 @@ static void compile_all(struct figures *f, const struct model *m)
 
 /* --- one formula --- */
 
-/* The names that the formula itself lists; nothing else may be needed. */
-static struct formula_inputs inputs_of(struct figures *f, struct arena *a, figure_id id)
+/* What a formula may ask for: the figures that it lists, and nothing else. */
+struct asked {
+    struct figures *figures;
+    struct arena *arena;
+    struct figure_ids ids;
+    struct formula_inputs inputs;
+    struct formula_world world;
+};
+
+static bool find_figure(void *ctx, const char *name, long double *out)
 {
-    struct figure_ids ids = {0};
-    figure_inputs(f, a, id, &ids);
-    const char **names = NEW_ARRAY(a, ids.n, const char *);
-    double *values = NEW_ARRAY(a, ids.n, double);
-    for (size_t i = 0; i < ids.n; i++) {
-        names[i] = figure_name(f, a, ids.at[i]);
-        values[i] = figure_value(f, ids.at[i]);
+    struct asked *x = ctx;
+    return formula_find_input(&x->inputs, name, out);
+}
+
+static struct asked *ask_of(struct figures *f, struct arena *a, figure_id id);
+
+/* A course by its own formula, from the figures that this one lists. */
+static bool find_course(void *ctx, const char *name, struct formula_course *out)
+{
+    struct asked *x = ctx;
+    char error[FORMULA_ERROR];
+    size_t n = strlen(name);
+    for (size_t i = 0; i < x->ids.n; i++) {
+        const char *known = x->inputs.names[i];
+        if (strncmp(known, name, n) != 0 || (known[n] != 0 && known[n] != '@'))
+            continue;
+        const char *formula = figure_formula(x->figures, x->arena, x->ids.at[i]);
+        struct asked *own = ask_of(x->figures, x->arena, x->ids.at[i]);
+        bool fine = formula_course(formula, &own->world, out, error);
+        ck_assert_msg(fine, "%s = %s: %s", name, formula, error);
+        return true;
     }
-    return (struct formula_inputs){ids.n, names, values};
+    return false;
+}
+
+static struct asked *ask_of(struct figures *f, struct arena *a, figure_id id)
+{
+    const struct units *u = &f->base->units;
+    struct asked *x = NEW(a, struct asked);
+    *x = (struct asked){.figures = f, .arena = a};
+    figure_inputs(f, a, id, &x->ids);
+    const char **names = NEW_ARRAY(a, x->ids.n, const char *);
+    double *values = NEW_ARRAY(a, x->ids.n, double);
+    for (size_t i = 0; i < x->ids.n; i++) {
+        names[i] = figure_name(f, a, x->ids.at[i]);
+        values[i] = figure_value(f, x->ids.at[i]);
+    }
+    x->inputs = (struct formula_inputs){x->ids.n, names, values};
+    x->world =
+        (struct formula_world){u->currency, u->counts, u->n_counts, x, find_figure, find_course};
+    return x;
 }
 
 static void expect_formula(struct figures *f, struct arena *a, figure_id id, struct counted *c)
 {
-    const struct units *u = &f->base->units;
     const char *formula = figure_formula(f, a, id), *name = figure_name(f, a, id);
-    struct formula_inputs inputs = inputs_of(f, a, id);
-    const struct formula_world world = {u->currency, u->counts, u->n_counts, &inputs,
-                                        formula_find_input};
     char error[FORMULA_ERROR];
     long double x;
     if (text_starts(formula, "mean(")) {
         c->leaves++; /* a distribution: nothing to compute here */
         return;
     }
-    ck_assert_msg(formula_evaluate(formula, &world, &x, error), "%s = %.2000s: %s", name, formula,
-                  error);
+    bool fine = formula_evaluate(formula, &ask_of(f, a, id)->world, &x, error);
+    ck_assert_msg(fine, "%s = %.2000s: %s", name, formula, error);
     double y = figure_value(f, id);
-    ck_assert_msg(fabsl(x - y) <= 1e-12L * fabsl(x) + 1e-300L, "%s = %.2000s: %.17Lg, figure %.17g",
-                  name, formula, x, y);
+    bool over = text_starts(formula, "over(");
+    ck_assert_msg(fabsl(x - y) <= (over ? AVERAGED : 1e-12L) * fabsl(x) + 1e-300L,
+                  "%s = %.2000s: %.17Lg, figure %.17g", name, formula, x, y);
     c->formulas++;
     c->probabilities += strstr(formula, "probability(") != NULL;
+    c->averages += over;
 }
 
 static void expect_all(struct arena *a, const struct model *m, const char *perspective,
