@@ -30,16 +30,64 @@ static node_id sum(struct worth *x, size_t n, const node_id *nodes, struct dim d
     return n == 1 ? nodes[0] : graph_op(x->f->graph, OP_SUM, n, nodes);
 }
 
-/* Damage over the horizon as the register is now. */
+static const struct hazard_exports *exports_of(const struct compiled *hazard)
+{
+    return hazard->exports;
+}
+
+/* Does its risk change from year to year? */
+static bool is_yearly(const struct compiled *hazard)
+{
+    return hazard && exports_of(hazard)->of_year;
+}
+
+/* Present value of the damage of a hazard whose risk is one of each year. */
+static node_id yearly_damage(struct worth *x, const struct compiled *hazard, double from, double to)
+{
+    struct figures *f = x->f;
+    const struct hazard_exports *h = exports_of(hazard);
+    node_id *risks = NEW_ARRAY(f->arena, h->n_yearly, node_id);
+    for (size_t i = 0; i < h->n_yearly; i++)
+        risks[i] = figure_at(f, h->yearly[i])->node;
+    struct years y = {.from = from, .to = to, .of_year = h->of_year + (size_t)floor(from)};
+    y.n_years = to > from ? (size_t)(ceil(to) - floor(from)) : 0;
+    node_id sum = graph_years(f->graph, x->rate, h->n_yearly, risks, &y);
+    return graph_op2(f->graph, OP_MULTIPLY, sum, x->one_year);
+}
+
+static node_id risk_node(const struct worth *x, const struct compiled *hazard)
+{
+    return figure_at(x->f, hazard->main)->node;
+}
+
+/* Damage of one hazard over a stretch; NODE_NONE where it is not there. */
+static node_id damage_over(struct worth *x, const struct compiled *hazard, double from, double to)
+{
+    if (!hazard)
+        return NODE_NONE;
+    if (is_yearly(hazard))
+        return yearly_damage(x, hazard, from, to);
+    return graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, from, to), risk_node(x, hazard));
+}
+
+/* Damage over the horizon as the register is now: hazards whose risk stays take one annuity
+ * together. */
 static node_id damage_now(struct worth *x)
 {
     node_id *risks = NEW_ARRAY(x->f->arena, x->w->hazards.n, node_id);
-    size_t n = 0;
-    for (size_t i = 0; i < x->w->hazards.n; i++)
-        if (x->w->hazards.at[i].now)
-            risks[n++] = figure_at(x->f, x->w->hazards.at[i].now->main)->node;
-    return graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, 0, x->w->horizon),
-                     sum(x, n, risks, dim_money_rate));
+    node_id *parts = NEW_ARRAY(x->f->arena, x->w->hazards.n + 1, node_id);
+    size_t n = 0, n_parts = 0;
+    for (size_t i = 0; i < x->w->hazards.n; i++) {
+        const struct compiled *now = x->w->hazards.at[i].now;
+        if (now && is_yearly(now))
+            parts[n_parts++] = yearly_damage(x, now, 0, x->w->horizon);
+        else if (now)
+            risks[n++] = risk_node(x, now);
+    }
+    if (n > 0 || n_parts == 0)
+        parts[n_parts++] = graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, 0, x->w->horizon),
+                                     sum(x, n, risks, dim_money_rate));
+    return sum(x, n_parts, parts, dim_money);
 }
 
 /* The hazard under a variant; NULL where that has no such hazard. */
@@ -49,16 +97,29 @@ static const struct compiled *hazard_under(struct worth *x, const struct variant
     return model_find(v->model, id) ? compiled_of(&under, id) : NULL;
 }
 
-/* Risk before less risk after; a hazard that is not there has none. Never both NULL. */
+/* Risk before less risk after, of hazards whose risk stays; one that is not there has none.
+ * Never both NULL. */
 static node_id risk_avoided(struct worth *x, const struct compiled *before,
                             const struct compiled *after)
 {
     if (!after)
-        return figure_at(x->f, before->main)->node;
-    node_id risk = figure_at(x->f, after->main)->node;
+        return risk_node(x, before);
     if (!before)
-        return graph_op1(x->f->graph, OP_NEGATE, risk);
-    return graph_op2(x->f->graph, OP_SUBTRACT, figure_at(x->f, before->main)->node, risk);
+        return graph_op1(x->f->graph, OP_NEGATE, risk_node(x, after));
+    return graph_op2(x->f->graph, OP_SUBTRACT, risk_node(x, before), risk_node(x, after));
+}
+
+/* Damage before less damage after over a stretch. */
+static node_id damage_avoided(struct worth *x, const struct compiled *before,
+                              const struct compiled *after, double from, double to)
+{
+    struct graph *g = x->f->graph;
+    if (!is_yearly(before) && !is_yearly(after))
+        return graph_op2(g, OP_MULTIPLY, annuity(x, from, to), risk_avoided(x, before, after));
+    node_id was = damage_over(x, before, from, to), is = damage_over(x, after, from, to);
+    if (is == NODE_NONE)
+        return was;
+    return was == NODE_NONE ? graph_op1(g, OP_NEGATE, is) : graph_op2(g, OP_SUBTRACT, was, is);
 }
 
 struct nodes ARRAY_BODY(node_id);
@@ -76,8 +137,7 @@ static void add_avoided(struct worth *x, const struct weighed_hazard *h, const s
             end++;
         if (then != h->now)
             *array_push(x->f->arena, parts) =
-                graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, s->at[i].from, s->at[end - 1].to),
-                          risk_avoided(x, h->now, then));
+                damage_avoided(x, h->now, then, s->at[i].from, s->at[end - 1].to);
     }
 }
 

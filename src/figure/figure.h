@@ -12,7 +12,7 @@
 #ifndef FIGURE_FIGURE_H
 #define FIGURE_FIGURE_H
 
-#include "eval/eval.h"
+#include "eval/mean.h"
 #include "graph/diagram.h"
 #include "model/model.h"
 
@@ -139,6 +139,7 @@ struct compiled {
     size_t n;       /* figures */
     void *exports;  /* struct hazard_exports, element_exports, group_exports, ... by kind */
     figure_id main; /* value, rate, fails, risk */
+    uint32_t n_inputs; /* uncertain inputs of its own */
     const struct compiled *also; /* another unit with figures of the same object, or NULL */
 };
 
@@ -150,6 +151,7 @@ struct figures {
     day date;                       /* of evaluation: evidence accrues until then */
     struct graph *graph;
     struct eval *eval;
+    struct means *means;
     ARRAY(struct figure) list;
     ARRAY(struct compiled *) units;
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
@@ -158,6 +160,7 @@ struct figures {
     struct strmap groups;          /* element -> struct groups: its common causes in the base */
     size_t n_indexed;              /* common causes of the base that are in `groups` */
     ARRAY(const struct quantity *) inputs;
+    ARRAY(const char *) input_names; /* "VH-51A#0": the same under all variants */
     ARRAY(figure_id) of_node;     /* first figure of a node */
     ARRAY(const char *) literals; /* text of a CONST node, or NULL */
     uint32_t n_stated;            /* expressions that documents state, each a node of its own */
@@ -187,7 +190,13 @@ ohmen_status figures_compile(struct figures *f, const struct variant *v, const c
  * not a finite number. */
 ohmen_status figures_evaluate(struct figures *f, ohmen_error *e);
 
+/* The mean over all that is unknown or varies (eval/mean.h). */
 double figure_value(const struct figures *f, figure_id id);
+/* Its standard error; 0 where nothing was sampled. */
+double figure_error(const struct figures *f, figure_id id);
+enum mean_method figure_method(const struct figures *f, figure_id id);
+/* The value at the means of what is unknown: the same where the method is MEAN_EXACT. */
+double figure_at_means(const struct figures *f, figure_id id);
 struct dim figure_dim(const struct figures *f, figure_id id);
 const struct figure *figure_at(const struct figures *f, figure_id id);
 const char *figure_name(const struct figures *f, struct arena *a, figure_id id);

@@ -30,6 +30,36 @@ static ohmen_status find_perspective(struct figures *f, const char *name, ohmen_
                      nearest_hint(f->arena, &near));
 }
 
+/* --- what the means ask of inputs --- */
+
+static ohmen_status input_quantile(void *ctx, uint32_t input, double p, double q, double *x,
+                                   ohmen_error *e)
+{
+    const struct figures *f = ctx;
+    return quantity_tail(f->inputs.at[input], p, q, x, e);
+}
+
+static size_t input_atoms(void *ctx, uint32_t input, const double **values,
+                          const double **probabilities)
+{
+    const struct figures *f = ctx;
+    const struct quantity *q = f->inputs.at[input];
+    if (q->shape != SHAPE_DISCRETE)
+        return 0;
+    double *scaled = NEW_ARRAY(f->arena, q->n, double);
+    for (size_t i = 0; i < q->n; i++)
+        scaled[i] = q->times * q->values[i];
+    *values = scaled;
+    *probabilities = q->probabilities;
+    return q->n;
+}
+
+static const char *input_name(void *ctx, uint32_t input)
+{
+    const struct figures *f = ctx;
+    return f->input_names.at[input];
+}
+
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
                          day date, struct figures **out, ohmen_error *e)
 {
@@ -39,6 +69,9 @@ ohmen_status figures_new(struct arena *a, const struct model *base, const char *
     f->date = date;
     f->graph = graph_new(a);
     f->eval = eval_new(a, f->graph);
+    struct mean_source *source = NEW(a, struct mean_source);
+    *source = (struct mean_source){f, input_quantile, input_atoms, input_name};
+    f->means = means_new(a, f->eval, source);
     const char *wanted = perspective ? perspective : base->settings->perspective;
     if (wanted && !text_equal(wanted, "all")) {
         ohmen_status status = find_perspective(f, wanted, e);
@@ -163,6 +196,21 @@ const struct figure *figure_at(const struct figures *f, figure_id id)
 
 double figure_value(const struct figures *f, figure_id id)
 {
+    return means_value(f->means, f->list.at[id].node);
+}
+
+double figure_error(const struct figures *f, figure_id id)
+{
+    return means_error(f->means, f->list.at[id].node);
+}
+
+enum mean_method figure_method(const struct figures *f, figure_id id)
+{
+    return means_method(f->means, f->list.at[id].node);
+}
+
+double figure_at_means(const struct figures *f, figure_id id)
+{
     return eval_value(f->eval, f->list.at[id].node);
 }
 
@@ -242,6 +290,8 @@ ohmen_status figures_evaluate(struct figures *f, ohmen_error *e)
     node_id culprit = NODE_NONE;
     ohmen_error inner = OHMEN_ERROR_INIT;
     ohmen_status status = eval_point(f->eval, &culprit, &inner);
+    if (status == OHMEN_OK)
+        status = means_update(f->means, &culprit, &inner);
     if (status == OHMEN_COMPUTE && culprit != NODE_NONE)
         return not_finite(f, culprit, e);
     if (status != OHMEN_OK)

@@ -119,5 +119,8 @@ void quantity_range(const struct quantity *q, double *low, double *high);
 double quantity_mean(const struct quantity *q);
 double quantity_variance(const struct quantity *q);
 ohmen_status quantity_quantile(const struct quantity *q, double p, double *out, ohmen_error *e);
+/* The same with q = 1 - p, the smaller of the two exact, as in dist_quantile. */
+ohmen_status quantity_tail(const struct quantity *x, double p, double q, double *out,
+                           ohmen_error *e);
 
 #endif

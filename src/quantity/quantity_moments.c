@@ -38,18 +38,24 @@ double quantity_variance(const struct quantity *q)
     return q->times == 0 ? 0 : q->times * q->times * dist_variance(&d);
 }
 
-ohmen_status quantity_quantile(const struct quantity *q, double p, double *out, ohmen_error *e)
+ohmen_status quantity_tail(const struct quantity *x, double p, double q, double *out,
+                           ohmen_error *e)
 {
-    struct dist d = dist_of(q);
-    bool mirrored = q->times < 0; /* the p quantile is then that of 1 - p */
-    double x = mirrored ? dist_quantile(&d, 1 - p, p) : dist_quantile(&d, p, 1 - p);
+    struct dist d = dist_of(x);
+    bool mirrored = x->times < 0; /* the p quantile is then that of 1 - p */
+    double at = mirrored ? dist_quantile(&d, q, p) : dist_quantile(&d, p, q);
     char text[32];
-    if (!isfinite(x))
+    if (!isfinite(at))
         return error_set(e, OHMEN_COMPUTE, "the quantile at %s of '%s' cannot be computed",
                          isfinite(p) ? text_double(text, p) : "a number that is not finite",
-                         q->text ? q->text : "a distribution");
-    *out = q->times * x;
+                         x->text ? x->text : "a distribution");
+    *out = x->times * at;
     return OHMEN_OK;
+}
+
+ohmen_status quantity_quantile(const struct quantity *q, double p, double *out, ohmen_error *e)
+{
+    return quantity_tail(q, p, 1 - p, out, e);
 }
 
 static void range_of_shape(const struct quantity *q, double *low, double *high)

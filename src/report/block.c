@@ -6,6 +6,7 @@
 #include "report/block.h"
 
 #include <assert.h>
+#include <math.h>
 
 static const char *keep_text(struct report *r, const char *s)
 {
@@ -64,6 +65,15 @@ struct block *report_grid(struct report *r, const char *key, const char *title,
     struct block *b = add_block(r, BLOCK_GRID, key, title);
     b->grid = NEW(r->arena, struct grid);
     b->grid->currency = arena_str(r->arena, currency);
+    return b;
+}
+
+struct block *report_curve(struct report *r, const char *key, const char *title)
+{
+    struct block *b = add_block(r, BLOCK_CURVE, key, title);
+    b->curve = NEW(r->arena, struct curve);
+    curve_set_x(r, b, "x", NULL, NULL, STYLE_PLAIN);
+    curve_set_y(r, b, "y", NULL, NULL, STYLE_PLAIN);
     return b;
 }
 
@@ -170,4 +180,60 @@ struct grid_line *grid_add_line(struct report *r, struct block *b, const char *n
     l->risk = risk;
     l->symbol = keep_text(r, symbol ? symbol : "");
     return l;
+}
+
+static struct curve_axis *set_axis(struct report *r, struct curve_axis *axis, const char *key,
+                                   const char *head, const char *unit, enum number_style style)
+{
+    assert(key && *key);
+    *axis = (struct curve_axis){.key = keep_text(r, key),
+                                .head = keep_text(r, head ? head : ""),
+                                .unit = keep_text(r, unit ? unit : ""),
+                                .style = style};
+    return axis;
+}
+
+struct curve_axis *curve_set_x(struct report *r, struct block *b, const char *key,
+                               const char *head, const char *unit, enum number_style style)
+{
+    return set_axis(r, &b->curve->x, key, head, unit, style);
+}
+
+struct curve_axis *curve_set_y(struct report *r, struct block *b, const char *key,
+                               const char *head, const char *unit, enum number_style style)
+{
+    return set_axis(r, &b->curve->y, key, head, unit, style);
+}
+
+struct curve_line *curve_add_line(struct report *r, struct block *b, const char *name,
+                                  const char *symbol)
+{
+    struct curve_line *l = array_push(r->arena, &b->curve->lines);
+    l->name = keep_text(r, name ? name : "");
+    l->symbol = keep_text(r, symbol ? symbol : "");
+    return l;
+}
+
+/* Sums and quotients of such numbers are finite. */
+static bool can_draw(double x, double y)
+{
+    return isfinite(x) && isfinite(y) && fabs(x) <= 1e300 && fabs(y) <= 1e300;
+}
+
+void curve_add_point(struct report *r, struct curve_line *line, double x, double y)
+{
+    assert(can_draw(x, y));
+    assert(line->points.n == 0 || line->points.at[line->points.n - 1].x <= x);
+    *array_push(r->arena, &line->points) = (struct curve_point){x, y};
+}
+
+struct curve_mark *curve_add_mark(struct report *r, struct block *b, const char *label, double x,
+                                  double y)
+{
+    assert(can_draw(x, y));
+    struct curve_mark *m = array_push(r->arena, &b->curve->marks);
+    m->label = keep_text(r, label ? label : "");
+    m->x = x;
+    m->y = y;
+    return m;
 }

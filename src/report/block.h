@@ -15,7 +15,7 @@
 #include "base/error.h"
 #include "base/text.h"
 
-enum block_type { BLOCK_HEADING, BLOCK_NOTE, BLOCK_PAIRS, BLOCK_TABLE, BLOCK_GRID };
+enum block_type { BLOCK_HEADING, BLOCK_NOTE, BLOCK_PAIRS, BLOCK_TABLE, BLOCK_GRID, BLOCK_CURVE };
 
 enum cell_type {
     CELL_EMPTY,
@@ -38,7 +38,8 @@ enum number_style {
                           would read as 1: 0.9999 (down to 1 - 1e-12) */
     STYLE_PERCENT,     /* the value 0.123 printed as 12.3 under the unit %; 99.99 as it is. JSON
                           and CSV have the pure number 0.123, without a unit */
-    STYLE_RATIO        /* 1.23 */
+    STYLE_RATIO,       /* 1.23 */
+    STYLE_YEAR         /* a year and its part, with at most two decimals: 2027, 2031.25 */
 };
 
 struct cell {
@@ -85,6 +86,42 @@ struct grid {
     ARRAY(struct grid_line) lines;
 };
 
+/* An axis of a curve. */
+struct curve_axis {
+    const char *key;  /* in JSON and CSV: lower case with hyphens */
+    const char *head; /* "Interval between tests" */
+    const char *unit; /* "a", "EUR/a", "" */
+    enum number_style style;
+    bool log;         /* what is at or below 0 has no place on it and is told below the picture */
+    bool from_data;   /* of a linear y axis: it begins near the least value, not at 0 */
+};
+
+/* Finite, at most 1e300 in size. */
+struct curve_point {
+    double x, y;
+};
+
+/* Points in ascending order of x, joined by straight lines on the page; two points
+ * of one x are a jump. */
+struct curve_line {
+    const char *name;
+    const char *symbol; /* one printable ASCII character: draws it when there are several */
+    const char *figure; /* name of the figure that it is, or NULL */
+    ARRAY(struct curve_point) points;
+};
+
+struct curve_mark {
+    const char *label; /* "best" */
+    double x, y;       /* as of a point */
+    const char *x_figure, *y_figure;
+};
+
+struct curve {
+    struct curve_axis x, y;
+    ARRAY(struct curve_line) lines;
+    ARRAY(struct curve_mark) marks;
+};
+
 struct block {
     enum block_type type;
     const char *key;     /* in JSON: names the block; NULL: not printed there (headings) */
@@ -97,7 +134,8 @@ struct block {
     bool entries;        /* BLOCK_TABLE: in text each row is an entry: a line of the columns that
                             may never be dropped, and below it, indented, the others from keep 4
                             on that are not empty, each behind its head */
-    struct grid *grid;
+    struct grid *grid;   /* BLOCK_GRID */
+    struct curve *curve; /* BLOCK_CURVE */
 };
 
 struct report {
@@ -114,6 +152,8 @@ struct block *report_pairs(struct report *r, const char *key, const char *title)
 struct block *report_table(struct report *r, const char *key, const char *title);
 struct block *report_grid(struct report *r, const char *key, const char *title,
                           const char *currency);
+/* Both axes are plain and linear, without key, head and unit, until they are set. */
+struct block *report_curve(struct report *r, const char *key, const char *title);
 
 /* Adds a column to a table; returns it, for `right` and `keep`. Pointers into a
  * block are valid until the next addition to the same array. */
@@ -138,6 +178,19 @@ struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *l
 struct grid_line *grid_add_line(struct report *r, struct block *b, const char *name, double risk,
                                 const char *symbol);
 
+/* The axes of a curve; set `log` and `from_data` in the result. */
+struct curve_axis *curve_set_x(struct report *r, struct block *b, const char *key,
+                               const char *head, const char *unit, enum number_style style);
+struct curve_axis *curve_set_y(struct report *r, struct block *b, const char *key,
+                               const char *head, const char *unit, enum number_style style);
+/* A line without points and figure, and a mark without figures: set them in the result. */
+struct curve_line *curve_add_line(struct report *r, struct block *b, const char *name,
+                                  const char *symbol);
+/* x is not below that of the line's last point (asserted, as are finite numbers). */
+void curve_add_point(struct report *r, struct curve_line *line, double x, double y);
+struct curve_mark *curve_add_mark(struct report *r, struct block *b, const char *label, double x,
+                                  double y);
+
 struct report_format {
     unsigned width; /* columns: 60..200 */
     bool ascii;     /* only ASCII characters */
@@ -146,11 +199,13 @@ struct report_format {
 
 void report_write_text(struct text *out, const struct report *r, const struct report_format *f);
 /* One JSON object: {"blocks": [...]}, every cell as {"value": ..., "unit": ..., "figure": ...}
- * or plain text; stable key order; ends in a newline. */
+ * or plain text, the points of a curve as [x, y] in the units of its axes; stable key order;
+ * ends in a newline. */
 void report_write_json(struct text *out, const struct report *r);
 /* Every table of the report as RFC 4180 rows under a header of keys (with "-UNIT"
- * appended where a unit is known: risk-EUR/a), and every grid as a table of its marks; tables are
- * parted by an empty line. */
+ * appended where a unit is known: risk-EUR/a), every grid as a table of its marks, and every
+ * curve as a table of line, mark, x and y: a row for each point, without a mark, then one for
+ * each mark, without a line. Tables are parted by an empty line. */
 void report_write_csv(struct text *out, const struct report *r);
 
 /* The parts that other writers and tests use: three significant digits of the exact

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The tables of a report and the marks of its grids as comma-separated values (RFC 4180:
- * CR LF, quotes where needed). Control and invisible characters are shown, not sent; texts that a
- * spreadsheet would take for a formula are guarded. Owns nothing. */
+/* The tables of a report, the marks of its grids and the points of its curves as
+ * comma-separated values (RFC 4180: CR LF, quotes where needed). Control and invisible
+ * characters are shown, not sent; texts that a spreadsheet would take for a formula are guarded.
+ * Owns nothing. */
 #include <assert.h>
 #include <math.h>
 #include <string.h>
@@ -56,18 +57,20 @@ static const char *cell_value(struct csv_out *w, const struct cell *c)
     return arena_str(w->arena, text_double(buf, c->number == 0 ? 0 : c->number));
 }
 
-static const char *header_value(struct csv_out *w, const struct column *c)
+static const char *header_value(struct csv_out *w, const char *name, const char *in,
+                                enum number_style style)
 {
-    const char *key = clean_text(w->arena, c->key, false);
-    const char *unit = clean_text(w->arena, c->style == STYLE_PERCENT ? "" : c->unit, false);
+    const char *key = clean_text(w->arena, name, false);
+    const char *unit = clean_text(w->arena, style == STYLE_PERCENT ? "" : in, false);
     return *unit ? arena_printf(w->arena, "%s-%s", key, unit) : key;
 }
 
 static void write_header(struct csv_out *w, const struct block *b)
 {
     for (size_t j = 0; j < b->columns.n; j++) {
+        const struct column *c = &b->columns.at[j];
         text_add(w->out, j ? "," : "");
-        csv_cell(w, header_value(w, &b->columns.at[j]));
+        csv_cell(w, header_value(w, c->key, c->unit, c->style));
     }
     text_add(w->out, "\r\n");
 }
@@ -114,23 +117,77 @@ static void write_grid(struct csv_out *w, const struct grid *g)
         write_mark(w, g, &g->marks.at[i]);
 }
 
+/* --- curves --- */
+
+static void write_place(struct csv_out *w, const char *line, const char *mark, double x, double y)
+{
+    const struct cell across = {.type = CELL_NUMBER, .number = x};
+    const struct cell up = {.type = CELL_NUMBER, .number = y};
+    csv_cell(w, clean_text(w->arena, line, false));
+    text_byte(w->out, ',');
+    csv_cell(w, clean_text(w->arena, mark, false));
+    text_printf(w->out, ",%s,%s\r\n", cell_value(w, &across), cell_value(w, &up));
+}
+
+/* One row a point, then one row a mark. */
+static void write_curve(struct csv_out *w, const struct curve *c)
+{
+    text_add(w->out, "line,mark,");
+    csv_cell(w, header_value(w, c->x.key, c->x.unit, c->x.style));
+    text_byte(w->out, ',');
+    csv_cell(w, header_value(w, c->y.key, c->y.unit, c->y.style));
+    text_add(w->out, "\r\n");
+    for (size_t i = 0; i < c->lines.n; i++) {
+        const struct curve_line *l = &c->lines.at[i];
+        for (size_t k = 0; k < l->points.n; k++)
+            write_place(w, l->name, "", l->points.at[k].x, l->points.at[k].y);
+    }
+    for (size_t i = 0; i < c->marks.n; i++)
+        write_place(w, "", c->marks.at[i].label, c->marks.at[i].x, c->marks.at[i].y);
+}
+
+/* --- reports --- */
+
+static void write_table(struct csv_out *w, const struct block *b)
+{
+    write_header(w, b);
+    for (size_t k = 0; k < b->rows.n; k++)
+        write_row(w, b, &b->rows.at[k]);
+}
+
+static bool has_points(const struct curve *c)
+{
+    for (size_t i = 0; i < c->lines.n; i++)
+        if (c->lines.at[i].points.n)
+            return true;
+    return c->marks.n > 0;
+}
+
+static bool is_table(const struct block *b)
+{
+    switch (b->type) {
+    case BLOCK_TABLE: return b->columns.n > 0;
+    case BLOCK_GRID: return b->grid->marks.n > 0;
+    case BLOCK_CURVE: return has_points(b->curve);
+    default: return false;
+    }
+}
+
 void report_write_csv(struct text *out, const struct report *r)
 {
     struct csv_out w = {out, arena_child(out->arena)};
     size_t n = 0;
     for (size_t i = 0; i < r->blocks.n; i++) {
         const struct block *b = &r->blocks.at[i];
-        bool grid = b->type == BLOCK_GRID && b->grid->marks.n > 0;
-        if (!grid && (b->type != BLOCK_TABLE || b->columns.n == 0))
+        if (!is_table(b))
             continue;
         text_add(out, n++ ? "\r\n" : "");
-        if (grid) {
+        if (b->type == BLOCK_GRID)
             write_grid(&w, b->grid);
-            continue;
-        }
-        write_header(&w, b);
-        for (size_t k = 0; k < b->rows.n; k++)
-            write_row(&w, b, &b->rows.at[k]);
+        else if (b->type == BLOCK_CURVE)
+            write_curve(&w, b->curve);
+        else
+            write_table(&w, b);
     }
     arena_free(w.arena);
 }

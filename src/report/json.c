@@ -225,9 +225,81 @@ static void put_grid(struct json *j, const struct grid *g)
     text_byte(j->out, ']');
 }
 
+static void put_axis(struct json *j, const char *name, const struct curve_axis *axis)
+{
+    put_key(j, name, false);
+    text_byte(j->out, '{');
+    put_member(j, "key", axis->key, true);
+    put_member(j, "head", axis->head, false);
+    if (*axis->unit && axis->style != STYLE_PERCENT)
+        put_member(j, "unit", axis->unit, false);
+    put_member(j, "scale", axis->log ? "log" : "linear", false);
+    text_byte(j->out, '}');
+}
+
+static void put_points(struct json *j, const struct curve_line *l)
+{
+    open_list(j, "points");
+    for (size_t i = 0; i < l->points.n; i++) {
+        text_add(j->out, i ? ", [" : "[");
+        put_double(j, l->points.at[i].x);
+        text_add(j->out, ", ");
+        put_double(j, l->points.at[i].y);
+        text_byte(j->out, ']');
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_curve_line(struct json *j, const struct curve_line *l)
+{
+    text_byte(j->out, '{');
+    put_member(j, "name", l->name, true);
+    put_member(j, "symbol", l->symbol, false);
+    if (l->figure)
+        put_member(j, "figure", l->figure, false);
+    put_points(j, l);
+    text_byte(j->out, '}');
+}
+
+static void put_place(struct json *j, const struct curve_axis *axis, const char *name, double x,
+                      const char *figure)
+{
+    put_key(j, name, false);
+    put_value(j, x, axis->style == STYLE_PERCENT ? NULL : axis->unit, figure);
+    text_byte(j->out, '}');
+}
+
+static void put_curve_mark(struct json *j, const struct curve *c, const struct curve_mark *m)
+{
+    text_byte(j->out, '{');
+    put_member(j, "label", m->label, true);
+    put_place(j, &c->x, "x", m->x, m->x_figure);
+    put_place(j, &c->y, "y", m->y, m->y_figure);
+    text_byte(j->out, '}');
+}
+
+static void put_curve(struct json *j, const struct curve *c)
+{
+    put_axis(j, "x", &c->x);
+    put_axis(j, "y", &c->y);
+    open_list(j, "lines");
+    for (size_t i = 0; i < c->lines.n; i++) {
+        next_line(j, i);
+        put_curve_line(j, &c->lines.at[i]);
+    }
+    text_byte(j->out, ']');
+    open_list(j, "marks");
+    for (size_t i = 0; i < c->marks.n; i++) {
+        next_line(j, i);
+        put_curve_mark(j, c, &c->marks.at[i]);
+    }
+    text_byte(j->out, ']');
+}
+
 static void put_block(struct json *j, const struct block *b)
 {
-    static const char *const types[] = {"heading", "note", "pairs", "table", "grid"};
+    static const char *const types[] = {"heading", "note", "pairs", "table", "grid",
+                                        "curve"};
     text_byte(j->out, '{');
     put_member(j, "key", b->key, true);
     put_member(j, "type", types[b->type], false);
@@ -239,6 +311,7 @@ static void put_block(struct json *j, const struct block *b)
     case BLOCK_PAIRS: put_pairs(j, b); break;
     case BLOCK_TABLE: put_table(j, b); break;
     case BLOCK_GRID: put_grid(j, b->grid); break;
+    case BLOCK_CURVE: put_curve(j, b->curve); break;
     }
     text_byte(j->out, '}');
 }

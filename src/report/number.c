@@ -10,7 +10,7 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { USUAL_DIGITS = 3, MOST_DIGITS = 12 };
+enum { USUAL_DIGITS = 3, MOST_DIGITS = 12, YEAR_DECIMALS = 2 };
 
 /* |x| = d.ddd * 10^exponent, zeros at the end left out. */
 struct decimal {
@@ -36,9 +36,22 @@ static bool is_one(const struct decimal *d)
     return d->n == 1 && d->digits[0] == '1' && d->exponent == 0;
 }
 
+static int between(int n, int least, int most)
+{
+    return n < least ? least : n > most ? most : n;
+}
+
+static struct decimal decimal_of_year(double x)
+{
+    int before = decimal_of(x, MOST_DIGITS).exponent + 1;
+    return decimal_of(x, between(before + YEAR_DECIMALS, 1, MOST_DIGITS));
+}
+
 /* A chance below 1 never reads as 1 (down to a complement of 1e-12): 0.9999, not 1. */
 static struct decimal decimal_in_style(double x, enum number_style style)
 {
+    if (style == STYLE_YEAR)
+        return decimal_of_year(x);
     struct decimal d = decimal_of(x, USUAL_DIGITS);
     bool chance = style == STYLE_PROBABILITY || style == STYLE_PERCENT;
     for (int n = USUAL_DIGITS + 1; chance && x < 1 && is_one(&d) && n <= MOST_DIGITS; n++)
@@ -50,7 +63,7 @@ static struct decimal decimal_in_style(double x, enum number_style style)
 static bool is_fixed(int exponent, enum number_style style)
 {
     int low = style == STYLE_FREQUENCY ? -1 : -2;
-    int high = style == STYLE_MONEY ? 9 : 5;
+    int high = style == STYLE_MONEY || style == STYLE_YEAR ? 9 : 5;
     return exponent >= low && exponent < high;
 }
 
@@ -104,6 +117,21 @@ char *number_scaled(char *buf, double x, enum number_style style, int shift)
 char *number_text(char *buf, double x, enum number_style style)
 {
     return number_scaled(buf, x, style, style == STYLE_PERCENT ? -2 : 0);
+}
+
+char *number_digits(char *buf, double x, int n, int shift)
+{
+    if (!isfinite(x) || x == 0)
+        return put_special(buf, x);
+    struct decimal d = decimal_of(x, between(n, 1, MOST_DIGITS));
+    d.exponent -= shift;
+    char *to = buf;
+    if (x < 0)
+        *to++ = '-';
+    bool fixed = d.exponent >= -MOST_DIGITS / 2 && d.exponent <= MOST_DIGITS;
+    to = fixed ? put_fixed(to, &d) : put_scientific(to, &d);
+    *to = 0;
+    return buf;
 }
 
 int number_exponent(double x)

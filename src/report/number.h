@@ -11,6 +11,10 @@
  * twice. buf: 32 bytes. */
 char *number_scaled(char *buf, double x, enum number_style style, int shift);
 
+/* x / 10^shift with n (1 to 12) significant digits and no exponent, for numbers of one axis
+ * that differ only behind their third digit. buf: 32 bytes. */
+char *number_digits(char *buf, double x, int n, int shift);
+
 /* The power of ten of x once rounded to three digits: 999.7 has 3. x is finite
  * and not zero. */
 int number_exponent(double x);

@@ -62,5 +62,6 @@ const char *cell_words(const struct page *p, const struct cell *c, enum number_s
 /* The blocks that have a file of their own. */
 void page_table(struct page *p, const struct block *b);
 void page_grid(struct page *p, const struct grid *g);
+void page_curve(struct page *p, const struct curve *c);
 
 #endif

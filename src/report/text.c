@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The text writer: headings, notes and pairs, and the order of the blocks. Tables
- * and grids have files of their own. Owns the scratch arena of one writing.
+/* The text writer: headings, notes and pairs, and the order of the blocks. Tables,
+ * grids and curves have files of their own. Owns the scratch arena of one writing.
  * Invariant: blocks are parted by one empty line; a chapter by two. */
 #include <assert.h>
 #include <math.h>
@@ -206,6 +206,7 @@ static void write_block(struct page *p, const struct block *b)
     case BLOCK_PAIRS: write_pairs(p, b); break;
     case BLOCK_TABLE: page_table(p, b); break;
     case BLOCK_GRID: page_grid(p, b->grid); break;
+    case BLOCK_CURVE: page_curve(p, b->curve); break;
     }
 }
 

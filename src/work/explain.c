@@ -49,15 +49,22 @@ static const char *source_words(struct job *j, figure_id id)
                         s->reference ? s->reference : "");
 }
 
-static const char *shown_value(struct job *j, figure_id id)
+/* A value in the unit in which the figure is shown. */
+static const char *value_words(struct job *j, figure_id id, double value)
 {
     char number[32];
-    double shown;
+    double shown, whole = figure_value(j->figures, id);
     const char *unit = figure_display(j, id, &shown);
+    shown = whole == 0 ? value : value * (shown / whole);
     if (text_starts(unit, j->model->settings->currency))
         return money_text(j->arena, shown, unit);
     number_text(number, shown, STYLE_PLAIN);
     return arena_printf(j->arena, "%s%s%s", number, *unit ? " " : "", unit);
+}
+
+static const char *shown_value(struct job *j, figure_id id)
+{
+    return value_words(j, id, figure_value(j->figures, id));
 }
 
 static void explain_row(struct job *j, struct block *b, figure_id id, unsigned level)
@@ -99,6 +106,27 @@ static void figure_note(struct job *j, figure_id id)
                 money ? arena_printf(j->arena, " Damage counted: %s.", perspective_words(j)) : "");
 }
 
+/* Where the mean is not the value at the means: both, and how the mean came about. */
+static void method_note(struct job *j, figure_id id)
+{
+    enum mean_method method = figure_method(j->figures, id);
+    if (method == MEAN_EXACT)
+        return;
+    const char *at_means = value_words(j, id, figure_at_means(j->figures, id));
+    if (method == MEAN_QUADRATURE)
+        report_note(j->report, "mean",
+                    "The mean over what is unknown, by quadrature. At the means of what is unknown "
+                    "it would be %s: something unknown enters more than once, or in a curve.",
+                    at_means);
+    else
+        report_note(j->report, "mean",
+                    "The mean over what is unknown, by a sample of %d points: its standard error "
+                    "is %s. At the means of what is unknown it would be %s: something unknown "
+                    "enters more than once, or in a curve.",
+                    MEAN_SETS * MEAN_STRATA, value_words(j, id, figure_error(j->figures, id)),
+                    at_means);
+}
+
 struct explain_request {
     const char *figure;
     unsigned depth;
@@ -116,15 +144,10 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     struct explaining x = {.job = j, .depth = q->depth};
-    const struct figure *g = figure_at(j->figures, id);
     figure_note(j, id);
     collect(&x, id);
     explain_table(&x);
-    if (graph_degree(j->figures->graph, g->node) > 1)
-        report_note(
-            j->report, "not-linear",
-            "This is the value at the means of what is unknown or varies; since one of them enters "
-            "more than once, or in a curve, the true mean is different.");
+    method_note(j, id);
     return OHMEN_OK;
 }
 

@@ -245,27 +245,30 @@ void part_unused(struct job *j)
         text_str(&t));
 }
 
+/* How the means came about, and the hazards whose means were sampled. */
 void part_linearity(struct job *j, const struct hazards *h)
 {
-    struct text t;
-    text_init(&t, j->arena);
-    for (size_t i = 0; i < h->n; i++)
-        if (graph_degree(j->figures->graph, figure_at(j->figures, exports(h->at[i])->risk)->node) >
-            1)
-            text_printf(&t, "%s%s", t.n ? ", " : "", h->at[i]->id);
-    if (t.n)
-        report_note(
-            j->report, "not-linear",
-            "Figures are computed at the means of what is unknown or varies. That is their mean, "
-            "exactly, where each unknown enters once. In %s one enters more than once, or in a "
-            "curve: there the true mean is different, and for unknowns shared by several elements "
-            "it is higher.",
-            text_str(&t));
-    else
-        report_note(
-            j->report, "linear",
-            "Figures are computed at the means of what is unknown or varies; every unknown enters "
-            "each risk once, so these are the means of the risks, exactly.");
+    struct text sampled;
+    bool any = false;
+    text_init(&sampled, j->arena);
+    for (size_t i = 0; i < h->n; i++) {
+        figure_id id = exports(h->at[i])->risk;
+        enum mean_method method = figure_method(j->figures, id);
+        any = any || method != MEAN_EXACT;
+        if (method == MEAN_SAMPLE)
+            text_printf(&sampled, "%s%s (\xc2\xb1 %s)", sampled.n ? ", " : "", h->at[i]->id,
+                        money_rate(j, figure_error(j->figures, id)));
+    }
+    report_note(j->report, "means",
+                "Every figure is the mean over what is unknown and what varies from one occurrence "
+                "to the next.%s%s%s%s",
+                any ? " Where an unknown enters more than once, such as the failure rate of a type "
+                      "that several elements share, or in a curve, the mean is integrated; it is "
+                      "not the value at the means, which `explain` shows beside it."
+                    : " Each unknown enters each risk once, so that it is the value at the means, "
+                      "exactly.",
+                sampled.n ? " By a sample with the standard error given: " : "",
+                sampled.n ? text_str(&sampled) : "", sampled.n ? "." : "");
 }
 
 void part_cautions(struct job *j)

@@ -82,6 +82,55 @@ static void add_picture(struct report *r)
     grid_add_line(r, b, "acceptable", 300, "=");
 }
 
+/* Failure grows by 0.0036 a year and is 0 again after each test, every four years. */
+static void add_sawtooth(struct report *r)
+{
+    struct block *b = report_curve(r, "failure", "Failure on demand over 25 years");
+    curve_set_x(r, b, "year", "Year", "", STYLE_YEAR);
+    curve_set_y(r, b, "probability", "Probability of failure on demand", "", STYLE_PROBABILITY);
+    struct curve_line *l = curve_add_line(r, b, "Main protection of busbar 1", "o");
+    l->figure = "H-BUS1.failure";
+    for (int k = 0; k < 7; k++) {
+        double end = k == 6 ? 2052.25 : 2031.25 + 4 * k;
+        curve_add_point(r, l, k ? 2027.25 + 4 * k : 2027.25, k ? 0 : 0.0047);
+        curve_add_point(r, l, end, (end - 2027.25 - 4 * k) * 0.0036 + (k ? 0 : 0.0047));
+    }
+    curve_add_mark(r, b, "next test", 2031.25, 0.0191)->x_figure = "H-BUS1.next-test";
+}
+
+/* Faults of 2385 EUR/a for each year between tests, 12600 EUR a test; their sum. */
+static void add_costs(struct report *r)
+{
+    struct block *b = report_curve(r, "interval", "Cost of testing and of not testing");
+    curve_set_x(r, b, "interval", "Interval between tests", "a", STYLE_PLAIN)->log = true;
+    curve_set_y(r, b, "cost", "Yearly cost", "EUR/a", STYLE_MONEY);
+    static const char *const names[] = {"Tests", "Faults", "Both", "Both, as agreed"};
+    static const char *const symbols[] = {"t", "f", "+", "+"};
+    for (int i = 0; i < 3; i++) {
+        struct curve_line *l = curve_add_line(r, b, names[i], symbols[i]);
+        for (double x = 0.25; x <= 8; x *= 1.25992104989487319) {
+            double tests = i == 1 ? 0 : 12600 / x, faults = i == 0 ? 0 : 2385 * x;
+            curve_add_point(r, l, x, tests + faults);
+        }
+    }
+    curve_add_line(r, b, names[3], symbols[3]);
+    curve_add_mark(r, b, "best", 2.2985, 10963.8)->y_figure = "D-TEST.best";
+    curve_add_mark(r, b, "today", 6, 16410);
+}
+
+/* One step a year, from an axis that does not begin at 0. */
+static void add_risks(struct report *r)
+{
+    struct block *b = report_curve(r, "risk-by-year", "Risk year by year");
+    curve_set_x(r, b, "time", "Years from now", "a", STYLE_PLAIN);
+    curve_set_y(r, b, "risk", "Risk", "EUR/a", STYLE_MONEY)->from_data = true;
+    struct curve_line *l = curve_add_line(r, b, "Harbour", "h");
+    for (int k = 0; k < 20; k++) {
+        curve_add_point(r, l, k, 123456 + 1740 * k - 9000 * (k / 7));
+        curve_add_point(r, l, k + 1, 123456 + 1740 * k - 9000 * (k / 7));
+    }
+}
+
 static struct report sample(struct arena *a)
 {
     struct report r;
@@ -89,6 +138,10 @@ static struct report sample(struct arena *a)
     add_summary(&r);
     add_hazards(&r);
     add_picture(&r);
+    report_heading(&r, 3, "Through the years");
+    add_sawtooth(&r);
+    add_costs(&r);
+    add_risks(&r);
     return r;
 }
 

@@ -56,6 +56,8 @@ static const struct { double x; enum number_style style; const char *text; } num
     {0.00001, STYLE_PERCENT, "1e-3"},
     {-0.07, STYLE_PERCENT, "-7"},
     {1.234, STYLE_RATIO, "1.23"},
+    {2027, STYLE_YEAR, "2027"}, {2031.25, STYLE_YEAR, "2031.25"}, {2031.2385, STYLE_YEAR, "2031.24"},
+    {-44.5, STYLE_YEAR, "-44.5"}, {123456.125, STYLE_YEAR, "123456.12"}, {0, STYLE_YEAR, "0"},
 };
 
 START_TEST(numbers_as_specified)

@@ -118,10 +118,36 @@ static void add_some_grid(struct random *r, struct report *report)
         grid_add_line(report, b, some_text(r), random_log_uniform(r, 1e-3, 1e6), some_text(r));
 }
 
+static double drawable(double x)
+{
+    return fabs(x) <= 1e300 ? x : 2.385;
+}
+
+static void add_some_curve(struct random *r, struct report *report)
+{
+    struct block *b = report_curve(report, "curve", some_text(r));
+    curve_set_x(report, b, "x", some_text(r), some_text(r),
+                (enum number_style)random_index(r, 7))
+        ->log = random_index(r, 2);
+    struct curve_axis *y = curve_set_y(report, b, "y", some_text(r), some_text(r),
+                                       (enum number_style)random_index(r, 7));
+    y->log = random_index(r, 2);
+    y->from_data = random_index(r, 2);
+    for (size_t i = random_index(r, 4); i-- > 0;) {
+        struct curve_line *l = curve_add_line(report, b, some_text(r), some_text(r));
+        double x = drawable(some_number(r));
+        for (size_t k = random_index(r, 20); k-- > 0; x = fmax(x, drawable(some_number(r))))
+            curve_add_point(report, l, x, drawable(some_number(r)));
+    }
+    for (size_t i = random_index(r, 4); i-- > 0;)
+        curve_add_mark(report, b, some_text(r), drawable(some_number(r)),
+                       drawable(some_number(r)));
+}
+
 static void fill_at_random(struct random *r, struct report *report)
 {
     for (size_t i = random_index(r, 6) + 1; i-- > 0;) {
-        switch (random_index(r, 5)) {
+        switch (random_index(r, 6)) {
         case 0: report_heading(report, (int)random_index(r, 3) + 1, some_text(r)); break;
         case 1:
             report_note(report, "note", "%s %s\n  %s\n\n%s", some_text(r), some_text(r),
@@ -130,6 +156,7 @@ static void fill_at_random(struct random *r, struct report *report)
         case 2: add_some_pairs(r, report); break;
         case 3: add_some_table(r, report); break;
         case 4: add_some_grid(r, report); break;
+        case 5: add_some_curve(r, report); break;
         }
     }
 }
