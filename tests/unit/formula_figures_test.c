@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Every formula that a figure prints, evaluated by the evaluator of tests/lib from the
- * figures that it names, gives that figure: over the sample and random registers, the base
+ * figures that it names, gives that figure, all at the means of what is unknown (the figure itself
+ * is the mean, which a formula cannot show): over the sample and random registers, the base
  * and the variant of each option. */
 #include <check.h>
 #include <math.h>
@@ -121,7 +122,7 @@ static struct asked *ask_of(struct figures *f, struct arena *a, figure_id id)
     double *values = NEW_ARRAY(a, x->ids.n, double);
     for (size_t i = 0; i < x->ids.n; i++) {
         names[i] = figure_name(f, a, x->ids.at[i]);
-        values[i] = figure_value(f, x->ids.at[i]);
+        values[i] = figure_at_means(f, x->ids.at[i]);
     }
     x->inputs = (struct formula_inputs){x->ids.n, names, values};
     x->world =
@@ -140,7 +141,7 @@ static void expect_formula(struct figures *f, struct arena *a, figure_id id, str
     }
     bool fine = formula_evaluate(formula, &ask_of(f, a, id)->world, &x, error);
     ck_assert_msg(fine, "%s = %.2000s: %s", name, formula, error);
-    double y = figure_value(f, id);
+    double y = figure_at_means(f, id);
     bool over = text_starts(formula, "over(");
     ck_assert_msg(fabsl(x - y) <= (over ? AVERAGED : 1e-12L) * fabsl(x) + 1e-300L,
                   "%s = %.2000s: %.17Lg, figure %.17g", name, formula, x, y);
