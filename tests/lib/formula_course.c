@@ -146,7 +146,7 @@ bool formula_over(struct reader *r, long double *out)
         return formula_fail(r, "no time between");
     formula_blanks(r);
     if (strncmp(r->p, word, sizeof word - 1) != 0)
-        return course_over(r, from, to, out);
+        return course_over(r, from, to, out) && formula_expect(r, ')');
     r->p += sizeof word - 1;
     return formula_probability_over(r, from, to, out) && formula_expect(r, ')');
 }
