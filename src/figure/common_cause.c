@@ -16,7 +16,8 @@
  * The test that finds a shock is that of `found-by`, else that of the member with the shortest
  * interval (the first by id among equals); with `settings` and without `found-by` no test finds
  * it. Demands reveal it as they reveal that member. A detected shock is repaired as slowly as the
- * slowest member. */
+ * slowest member; where the plant is out of service while a member is repaired, it is no failure
+ * to operate. */
 #include <math.h>
 #include <string.h>
 
@@ -194,6 +195,18 @@ static node_id slowest_repair(struct group_building *g, size_t n, const size_t *
     return same ? args[0] : graph_op(f->graph, OP_MAX, n, args);
 }
 
+/* A repair for which the plant is out of service is no failure to operate. */
+static bool out_while_repaired(const struct group_building *g, size_t n, const size_t *set)
+{
+    for (size_t i = 0; i < n; i++) {
+        const char *id = g->x->of.at[set[i]];
+        const struct element *x = model_get(g->b->variant->model, KIND_ELEMENT, id);
+        if (x->out_while_repaired)
+            return true;
+    }
+    return false;
+}
+
 static const char *joined(struct arena *a, const struct names *of, size_t n, const size_t *set)
 {
     struct text t;
@@ -265,7 +278,7 @@ static bool compile_shock(struct group_building *g, size_t n, const size_t *set,
             compiled_add(g->b, names[p], q, NULL, parts[p], NULL, NULL);
     if (parts[ON_DEMAND] != NODE_NONE)
         k.standing[k.n_standing++] = parts[ON_DEMAND];
-    if (parts[DETECTED] != NODE_NONE)
+    if (parts[DETECTED] != NODE_NONE && !out_while_repaired(g, n, set))
         k.standing[k.n_standing++] = out->in_repair =
             in_repair(g->b, parts[DETECTED], slowest_repair(g, n, set), q);
     set_found(g, &k);

@@ -181,7 +181,7 @@ static double first_test(const struct figures *f, const struct test *t, double f
     if (t->next != DAY_NONE)
         return fmax(horizon_years(s, t->next), from);
     double today = horizon_years(s, f->date);
-    double k = floor((today - from) / every) + 1;
+    double k = floor((today - from) / every + 1e-9) + 1; /* on that very day: the one behind it */
     return from + fmax(k, 1) * every;
 }
 
@@ -203,10 +203,10 @@ void element_instants(const struct figures *f, const struct element *x, struct m
         if (t->next != DAY_NONE)
             c.from = fmin(horizon_years(s, t->next) - every, 0);
     }
-    c.from = fmin(c.from, 0); /* what comes later is taken to be there from the start */
-    c.born = fmin(c.born, 0);
     if (t)
         c.first = m->dated ? first_test(f, t, c.from, every) : every;
+    c.from = fmin(c.from, 0); /* what comes later is taken to be there from the start */
+    c.born = fmin(c.born, 0);
     m->tested = t != NULL;
     m->when = c;
 }

@@ -271,6 +271,9 @@ static bool must_not_be_negative(enum property p)
            p == PROPERTY_RUNNING;
 }
 
+/* What is certain may come out as more than 1 by the rounding of an average over time. */
+static const double MOST_PROBABLE = 1 + 1e-11;
+
 /* What an expression of names gives can only be seen here. */
 static ohmen_status check_ranges(struct figures *f, ohmen_error *e)
 {
@@ -280,7 +283,7 @@ static ohmen_status check_ranges(struct figures *f, ohmen_error *e)
             continue;
         double x = figure_value(f, i);
         char text[32];
-        if (is_probability(p) && (x < 0 || x > 1))
+        if (is_probability(p) && (x < 0 || x > MOST_PROBABLE))
             return error_set(e, OHMEN_COMPUTE, "%s is %s, which is no probability",
                              figure_name(f, f->arena, i), text_double(text, x));
         if (must_not_be_negative(p) && x < 0)

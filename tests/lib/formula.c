@@ -13,6 +13,11 @@
 
 static bool total(struct reader *r, long double *out);
 
+bool formula_sum(struct reader *r, long double *out)
+{
+    return total(r, out);
+}
+
 /* --- reading --- */
 
 bool formula_fail(struct reader *r, const char *what)
@@ -175,7 +180,43 @@ static bool extreme(struct reader *r, bool least, long double *out)
     return true;
 }
 
-enum call { MIN, MAX, EXP, LOG, SQRT, RATIO, ANNUITY, LOOKUP, PROBABILITY, CALLS };
+/* 1 - (1 - x)(1 - y) ..., in the form that keeps the digits of small ones. */
+static bool independent(struct reader *r, long double *out)
+{
+    long double x[ARGUMENTS];
+    size_t n;
+    if (!arguments(r, x, &n))
+        return false;
+    *out = 0;
+    for (size_t i = 0; i < n; i++)
+        *out += x[i] - *out * x[i];
+    return true;
+}
+
+static bool course_at_start(struct reader *r, long double *out)
+{
+    struct formula_course c;
+    if (!formula_read_course(r, &c))
+        return false;
+    *out = formula_course_at(&c, 0);
+    return true;
+}
+
+enum call {
+    MIN,
+    MAX,
+    EXP,
+    LOG,
+    SQRT,
+    RATIO,
+    ANNUITY,
+    LOOKUP,
+    EITHER,
+    COURSE,
+    OVER,
+    PROBABILITY,
+    CALLS
+};
 static const struct {
     const char *word;
     size_t n; /* arguments; 0: reads its own */
@@ -183,6 +224,7 @@ static const struct {
     [MIN] = {"min", 0},         [MAX] = {"max", 0},       [EXP] = {"exp", 1},
     [LOG] = {"log", 1},         [SQRT] = {"sqrt", 1},     [RATIO] = {"ratio", 2},
     [ANNUITY] = {"annuity", 3}, [LOOKUP] = {"lookup", 0}, [PROBABILITY] = {"probability", 0},
+    [EITHER] = {"either", 0},   [COURSE] = {"course", 0}, [OVER] = {"over", 0},
 };
 
 static bool own_call(struct reader *r, enum call c, long double *out)
@@ -191,6 +233,9 @@ static bool own_call(struct reader *r, enum call c, long double *out)
     case MIN:
     case MAX: return extreme(r, c == MIN, out);
     case LOOKUP: return lookup(r, out);
+    case EITHER: return independent(r, out);
+    case COURSE: return course_at_start(r, out);
+    case OVER: return formula_over(r, out);
     default: return formula_probability(r, out) && formula_expect(r, ')');
     }
 }
@@ -390,15 +435,28 @@ static bool is_share(const char *figure, const char *wanted)
     return rest && is_figure(rest, wanted);
 }
 
+/* Does a figure stand for an event: RELAY.fails, CAUSE.fails.A.B? */
+static bool is_failure(const char *wanted)
+{
+    const char *dot = strchr(wanted, '.');
+    return dot && strncmp(dot, ".fails", 6) == 0 && (dot[6] == 0 || dot[6] == '.');
+}
+
+/* HAZARD.share.NAME.QUALIFIER for QUALIFIER.NAME */
+static bool find_share(const struct formula_inputs *inputs, const char *name, const char *qualifier,
+                       long double *out)
+{
+    char share[NAME_BYTES + 40];
+    snprintf(share, sizeof share, ".share.%.300s.%s", name, qualifier);
+    return first_input(inputs, share, is_share, out);
+}
+
 bool formula_find_input(void *ctx, const char *wanted, long double *out)
 {
-    char sees[NAME_BYTES];
-    if (strncmp(wanted, "sees.", 5) == 0) {
-        snprintf(sees, sizeof sees, ".share.%.300s.sees", wanted + 5);
-        return first_input(ctx, sees, is_share, out);
-    }
-    size_t n = strlen(wanted);
-    bool element = n > 6 && strcmp(wanted + n - 6, ".fails") == 0;
+    if (strncmp(wanted, "sees.", 5) == 0)
+        return find_share(ctx, wanted + 5, "sees", out);
+    if (strncmp(wanted, "disabled.", 9) == 0)
+        return find_share(ctx, wanted + 9, "disabled", out);
     return first_input(ctx, wanted, is_exactly, out) ||
-           (element && first_input(ctx, wanted, is_figure, out));
+           (is_failure(wanted) && first_input(ctx, wanted, is_figure, out));
 }

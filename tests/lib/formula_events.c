@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* probability(EVENTS): the Boolean expression is read into a small tree and summed over
- * every combination of its distinct events. */
+ * every combination of its distinct events; where these change with time, at each instant that
+ * the average asks for. */
 #include <string.h>
 
 #include "formula_parts.h"
@@ -174,20 +175,46 @@ static enum truth at_least_holds(const struct events *e, const struct part *p, i
     return met >= p->k ? YES : met + open >= p->k ? OPEN : NO;
 }
 
-/* The probability that an event is true: an element works, a function sees. */
-static bool chance_of(const struct events *e, int event, long double *yes, long double *no)
+/* --- probabilities of events --- */
+
+/* What an event is called behind the id of its object: RELAY.fails.alone for RELAY.alone. */
+static void figure_of(const char *event, const char *property, char out[NAME_BYTES + 12])
+{
+    size_t n = strcspn(event, ".");
+    memcpy(out, event, n);
+    out[n] = 0;
+    strcat(out, property);
+    strcat(out, event + n);
+}
+
+/* The figure that tells how probable an event is, and whether it tells when it is true. */
+static bool told_by(const char *event, char out[NAME_BYTES + 12])
+{
+    static const char spared[] = "spared.";
+    bool sees = strncmp(event, "sees.", 5) == 0;
+    if (sees)
+        strcpy(out, event);
+    else if (strncmp(event, spared, sizeof spared - 1) == 0)
+        strcat(strcpy(out, "disabled."), event + sizeof spared - 1);
+    else
+        figure_of(event, ".fails", out);
+    return sees;
+}
+
+/* The probabilities of the events at one time: [i][0] false, [i][1] true. An element works, a
+ * common cause does not strike, a function sees, a hazard spares. */
+typedef long double chances[FORMULA_EVENTS][2];
+
+static bool chance_of(const struct events *e, int event, long double p[2])
 {
     const struct formula_world *w = e->r->world;
-    char figure[NAME_BYTES + 8];
-    bool sees = strncmp(e->names[event], "sees.", 5) == 0;
-    strcpy(figure, e->names[event]);
-    if (!sees)
-        strcat(figure, ".fails");
-    long double p;
-    if (!w->find(w->ctx, figure, &p))
+    char figure[NAME_BYTES + 12];
+    bool yes = told_by(e->names[event], figure);
+    long double x;
+    if (!w->find(w->ctx, figure, &x))
         return formula_fail(e->r, figure);
-    *yes = sees ? p : 1 - p;
-    *no = sees ? 1 - p : p;
+    p[yes] = x;
+    p[!yes] = 1 - x;
     return true;
 }
 
@@ -206,13 +233,59 @@ static long double sum(const struct events *e, int root, const long double (*p)[
 bool formula_probability(struct reader *r, long double *out)
 {
     struct events e = {.r = r};
-    long double p[FORMULA_EVENTS][2];
+    chances p;
     int root = either(&e);
     if (root < 0)
         return false;
     for (int i = 0; i < e.n_events; i++)
-        if (!chance_of(&e, i, &p[i][1], &p[i][0]))
+        if (!chance_of(&e, i, p[i]))
             return false;
     *out = sum(&e, root, (const long double(*)[2])p, 0, 0, 1);
+    return true;
+}
+
+/* --- over time --- */
+
+struct events_over {
+    struct events events;
+    int root;
+    chances p;
+    int timed[FORMULA_EVENTS]; /* the event of each course */
+};
+
+static long double value_at(struct formula_timed *x, long double t)
+{
+    const struct events_over *o = x->of;
+    chances p;
+    memcpy(p, o->p, sizeof p);
+    for (size_t i = 0; i < x->n; i++) {
+        p[o->timed[i]][0] = formula_course_at(&x->course[i], t);
+        p[o->timed[i]][1] = 1 - p[o->timed[i]][0];
+    }
+    return sum(&o->events, o->root, (const long double(*)[2])p, 0, 0, 1);
+}
+
+/* Each event by its course, else by its probability. */
+static bool find_chances(struct events_over *o, struct formula_timed *x)
+{
+    for (int i = 0; i < o->events.n_events; i++) {
+        char course[NAME_BYTES + 12];
+        figure_of(o->events.names[i], ".course", course);
+        if (formula_find_course(o->events.r, course, &x->course[x->n]))
+            o->timed[x->n++] = i;
+        else if (!chance_of(&o->events, i, o->p[i]))
+            return false;
+    }
+    return true;
+}
+
+bool formula_probability_over(struct reader *r, long double from, long double to, long double *out)
+{
+    struct events_over o = {.events = {.r = r}};
+    struct formula_timed x = {.value = value_at, .of = &o};
+    o.root = either(&o.events);
+    if (o.root < 0 || !formula_expect(r, ')') || !find_chances(&o, &x))
+        return false;
+    *out = formula_average(&x, from, to);
     return true;
 }

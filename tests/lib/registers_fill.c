@@ -60,6 +60,22 @@ static bool is_wanted(struct generator *g, const struct field *f)
     return random_chance(g, 5) && can_be(g, f);
 }
 
+/* The share of time in repair is their product: so that it stays below 1. */
+static const struct {
+    const char *key, *unit;
+    double low, high;
+} bounded[] = {{"detected", "per a", 1e-3, 3}, {"repair", "h", 1, 90}};
+
+static struct node *wanted_value(struct generator *g, const struct field *f)
+{
+    for (size_t i = 0; i < sizeof bounded / sizeof *bounded; i++)
+        if (text_equal(f->key, bounded[i].key) && f->part == NULL)
+            return make_scalar(g, arena_printf(g->arena, "%s %s",
+                                               random_number(g, bounded[i].low, bounded[i].high),
+                                               bounded[i].unit));
+    return any_value(g, f);
+}
+
 void fill_fields(struct generator *g, struct node *m, const struct table *t,
                  const char *const *skip)
 {
@@ -67,7 +83,7 @@ void fill_fields(struct generator *g, struct node *m, const struct table *t,
         const struct field *f = &t->fields[i];
         if (!is_among(skip, f->key) && !in_group(t, f->key) && !node_get(m, f->key) &&
             is_wanted(g, f))
-            put_node(g, m, f->key, any_value(g, f));
+            put_node(g, m, f->key, wanted_value(g, f));
     }
 }
 

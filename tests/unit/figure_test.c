@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Tests of src/figure: figures of random hazards against full enumeration, variants against
- * registers that were patched by hand, and how much is compiled. The folder of the sample
+ * registers that were patched by hand, protection in time against adaptive quadrature, and how much
+ * is compiled. The folder of the sample
  * register is named on the command line. */
 #include "figure_test.h"
 
@@ -20,6 +21,7 @@ int main(int argc, char **argv)
     suite_add_tcase(s, figure_edge_case());
     suite_add_tcase(s, figure_variant_case());
     suite_add_tcase(s, figure_count_case());
+    suite_add_tcase(s, figure_time_case());
     SRunner *runner = srunner_create(s);
     srunner_run_all(runner, CK_NORMAL);
     int failed = srunner_ntests_failed(runner), run = srunner_ntests_run(runner);

@@ -9,6 +9,7 @@ TCase *figure_hazard_case(void);
 TCase *figure_edge_case(void);
 TCase *figure_variant_case(void);
 TCase *figure_count_case(void);
+TCase *figure_time_case(void);
 
 /* The folder samples/skerry. */
 extern const char *figure_sample;

@@ -172,9 +172,10 @@ struct asked {
 static const struct derived *row_named(struct asked *x, const char *name)
 {
     struct arena *a = x->c->arena;
-    const char *of_row = strncmp(name, "sees.", 5) == 0 ? name + 5 : NULL;
-    if (of_row)
-        name = arena_printf(a, "%s.share.%s.sees%s", x->hazard, of_row, x->variant);
+    if (strncmp(name, "sees.", 5) == 0)
+        name = arena_printf(a, "%s.share.%s.sees%s", x->hazard, name + 5, x->variant);
+    else if (strncmp(name, "disabled.", 9) == 0)
+        name = arena_printf(a, "%s.share.%s.disabled%s", x->hazard, name + 9, x->variant);
     return strmap_get(&x->c->rows, name);
 }
 
@@ -202,6 +203,11 @@ static const struct derived *element_row(struct asked *x, const char *name)
     return best;
 }
 
+static const char *behind_object(const char *name)
+{
+    return name + strcspn(name, ".");
+}
+
 static bool find(void *ctx, const char *name, long double *out)
 {
     struct asked *x = ctx;
@@ -210,12 +216,29 @@ static bool find(void *ctx, const char *name, long double *out)
         x->means++;
         return mean_of_text(arena_strn(x->c->arena, name + 5, n - 6), x->literals, out);
     }
-    bool element = n > 6 && strcmp(name + n - 6, ".fails") == 0;
+    bool element = strncmp(behind_object(name), ".fails", 6) == 0;
     const struct derived *d = element ? element_row(x, name) : row_named(x, name);
     x->names++;
     if (d)
         *out = d->exact;
     return d != NULL;
+}
+
+/* A course by its own row. */
+static bool find_course(void *ctx, const char *name, struct formula_course *out)
+{
+    struct asked *x = ctx;
+    struct formula_world world = *x->literals;
+    char error[FORMULA_ERROR];
+    const struct derived *d = element_row(x, name);
+    if (!d)
+        return false;
+    world.ctx = x;
+    world.find = find;
+    world.course = find_course;
+    bool fine = formula_course(d->formula, &world, out, error);
+    ck_assert_msg(fine, "%s = %s: %s", d->figure, d->formula, error);
+    return true;
 }
 
 static bool nothing(void *ctx, const char *name, long double *out)
@@ -241,11 +264,11 @@ static void check_source(struct checking_all *c, const struct derived *d)
 static void check_row(struct checking_all *c, const struct derived *d)
 {
     const struct units *u = &c->loaded.model->units;
-    struct formula_world literals = {u->currency, u->counts, u->n_counts, NULL, nothing};
+    struct formula_world literals = {u->currency, u->counts, u->n_counts, NULL, nothing, NULL};
     const char *at = strchr(d->figure, '@');
     struct asked x = {.c = c, .literals = &literals, .variant = at ? at : ""};
     x.hazard = arena_strn(c->arena, d->figure, strcspn(d->figure, "."));
-    struct formula_world world = {u->currency, u->counts, u->n_counts, &x, find};
+    struct formula_world world = {u->currency, u->counts, u->n_counts, &x, find, find_course};
     char error[FORMULA_ERROR];
     long double value = NAN;
     bool fine = formula_evaluate(d->formula, &world, &value, error);
