@@ -274,6 +274,8 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
         return unknown_object(f, p.id, e);
     else
         status = figures_compile(f, v, p.id, &u, e);
+    if (status == OHMEN_OK && u->object && u->object->kind == KIND_ELEMENT)
+        status = compile_alone(f, v, p.id, e);
     if (status == OHMEN_OK && u->object)
         status = to_part(f, v, p.rest, &u, e);
     return status == OHMEN_OK ? compiled_find(f, u, p.rest, out, e) : status;

@@ -1,10 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* An evaluator of its own for the formulas that figures print (grammar: docs/figures.md).
  *
- * Nothing of the product is used: own reading of the text, own table of units, long
- * double arithmetic, enumeration of all combinations of events where the product has decision
- * diagrams, and adaptive quadrature where it has a rule of fixed order. So a formula that is evaluated here and gives the figure says what
- * the figure is. */
+ * Nothing of the product is used: own reading of the text, own table of units, long double
+ * arithmetic, enumeration of all combinations of events where the product has decision diagrams,
+ * and adaptive quadrature where it has a rule of fixed order. So a formula that is evaluated here
+ * and gives the figure says what the figure is. */
 #ifndef TESTS_FORMULA_H
 #define TESTS_FORMULA_H
 

@@ -192,8 +192,11 @@ static bool told_by(const char *event, char out[NAME_BYTES + 12])
 {
     static const char spared[] = "spared.";
     bool sees = strncmp(event, "sees.", 5) == 0;
+    bool asserts = strncmp(event, "asserts.", 8) == 0, up = strncmp(event, "up.", 3) == 0;
     if (sees)
         strcpy(out, event);
+    else if (asserts || up)
+        strcat(strcpy(out, event), ".fails");
     else if (strncmp(event, spared, sizeof spared - 1) == 0)
         strcat(strcpy(out, "disabled."), event + sizeof spared - 1);
     else

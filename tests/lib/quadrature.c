@@ -5,7 +5,7 @@
 #include <math.h>
 #include <stdbool.h>
 
-enum { POINTS = 12, HALVINGS = 40 };
+enum { POINTS = 12, HALVINGS = 14 };
 static const long double SAME = 1e-15L;
 
 struct rule {

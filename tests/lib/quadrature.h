@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Adaptive quadrature in long double, of several functions at once: an oracle for averages over
  * time. Gauss and Legendre's rule of twelve points on a stretch and on its halves, which are halved
- * until both agree (any textbook of numerical analysis); the nodes are computed by Newton's method.
- * Knows nothing of the program. */
+ * until both agree, fourteen times at most (any textbook of numerical analysis); the nodes are
+ * computed by Newton's method. Knows nothing of the program. */
 #ifndef TESTS_QUADRATURE_H
 #define TESTS_QUADRATURE_H
 

@@ -147,11 +147,11 @@ static void group_fails(void *ctx, long double t, long double *out)
     int pairs = v->n == 2 ? 1 : 3, hits = v->n - 1;
     long double alone = down(v, 1 - hits * two - three, 1 - hits * two_d - three_d, t);
     long double pair = down(v, two, two_d, t), all = down(v, three, three_d, t);
-    /* n - votes + 1 = 2 channels down: by a shock, else two by themselves */
-    long double none = (1 - all) * powl(1 - pair, pairs), by_itself = alone * alone;
-    if (v->n == 3)
-        by_itself = 3 * alone * alone * (1 - alone) + alone * alone * alone;
-    *out = 1 - none * (1 - by_itself);
+    /* n - votes + 1 = 2 channels down: two by themselves, or by a shock */
+    *out = v->n == 2 ? alone * alone : alone * alone * (3 - 2 * alone);
+    *out = or_else(*out, all);
+    for (int i = 0; i < pairs; i++)
+        *out = or_else(*out, pair);
 }
 
 static const char *voted_text(struct arena *a, const struct voted *v)

@@ -183,6 +183,38 @@ START_TEST(probabilities)
 }
 END_TEST
 
+static bool find_course(void *ctx, const char *name, struct formula_course *out)
+{
+    (void)ctx;
+    *out = (struct formula_course){
+        .rate = 0.1L, .every = 2, .first = 1, .from = -1, .tested = true, .standing = 0.25L};
+    return strcmp(name, "R.course") == 0;
+}
+
+/* 1 - exp(-0.1 x) behind a test in the middle; Q and a half do not change. */
+START_TEST(over_time)
+{
+    struct formula_world w = world;
+    char error[FORMULA_ERROR];
+    long double x, part = 1 - (1 - expl(-0.1L)) / 0.1L,
+                   late = 1 - (expl(-0.1L) - expl(-0.2L)) / 0.1L;
+    w.course = find_course;
+    expect("either(0.5; 0.25)", 0.625L);
+    expect("course(0.5; 0.1 1/a; 0 1/a; 0; 0 1/a; from -2 a; born 0 a)",
+           0.5L + 0.5L * (1 - expl(-(long double)0.1 * 2)));
+    expect("course(0; 0 1/a; 0 1/a; 0.125; 0 1/a; from -2 a; first 4 a; every 3 a; born 0 a)",
+           0.125L);
+    expect("course(0; 0 1/a; 0 1/a; 0.125; 0 1/a; from -2 a; born 0 a; fresh)", 0);
+    ck_assert(formula_evaluate("over(0 a; 2 a; R.course)", &w, &x, error));
+    ck_assert(fabsl(x - (0.25L + 0.75L * (late + part) / 2)) < 1e-15L);
+    ck_assert(formula_evaluate("over(1 a; 2 a; probability(not (R and Q)))", &w, &x, error));
+    long double r = 0.25L + 0.75L * part, q = values[4];
+    ck_assert(fabsl(x - (r + q - r * q)) < 1e-15L);
+    refuse("over(0 a; 1 a; R.course)", "course");
+    refuse("over(1 a; 1 a; R.course)", "no time");
+}
+END_TEST
+
 START_TEST(what_is_refused)
 {
     refuse("", "expected");
@@ -250,6 +282,7 @@ int main(void)
     tcase_add_test(t, calls_of_functions);
     tcase_add_test(t, annuities);
     tcase_add_test(t, probabilities);
+    tcase_add_test(t, over_time);
     tcase_add_test(t, what_is_refused);
     tcase_add_test(t, limit_of_events);
     tcase_add_test(t, depth_is_bounded);
