@@ -373,10 +373,9 @@ void averages_take(struct averages *v, const struct averaged *what, const bool *
     size_t n_results = what->windows.n * what->diagram->n_roots;
     for (size_t k = 0; k < n_results; k++)
         results[k] = 0;
-    if (averages_pass(v, what, changed, add_results, results))
-        return;
-    for (size_t k = 0; k < n_results; k++)
-        results[k] = NAN;
+    bool sound = averages_pass(v, what, changed, add_results, results);
+    for (size_t k = 0; k < n_results; k++) /* weights and probabilities are rounded */
+        results[k] = !sound ? NAN : results[k] > 1 ? 1 : results[k];
 }
 
 void average_values(struct arena *a, const struct averaged *what, double *results)
