@@ -402,6 +402,14 @@ const uint32_t *blend_inputs(const struct blend *b, size_t *n)
     return b->shared;
 }
 
+bool blend_has_own(const struct blend *b)
+{
+    for (size_t i = 0; i < b->n; i++)
+        if (b->variables[i].nodes)
+            return true;
+    return false;
+}
+
 /* ---- one point ---- */
 
 static void take_course(struct blend *b, struct variable *x)

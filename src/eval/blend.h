@@ -26,6 +26,9 @@ ohmen_status blend_new(struct arena *a, struct eval *v, struct spreads *s,
 /* The inputs that remain, in rising order. */
 const uint32_t *blend_inputs(const struct blend *b, size_t *n);
 
+/* Whether a variable has inputs of its own, so that results are means over these. */
+bool blend_has_own(const struct blend *b);
+
 /* The DIAGRAM's results at values x of these. The values of the evaluation are other ones
  * afterwards, those of the DIAGRAM and its results excepted. */
 const double *blend_at(struct blend *b, const double *x);

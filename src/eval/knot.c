@@ -10,6 +10,7 @@
 #include "eval/knot.h"
 
 #include "eval/blend.h"
+#include "eval/memo.h"
 
 #include <math.h>
 #include <string.h>
@@ -107,24 +108,52 @@ void knot_find_steps(struct knot_search *k, size_t n_roots, const node_id *roots
 
 /* ---- one point ---- */
 
-void knot_walk(struct eval *v, const struct knot_steps *steps, const double *x)
+static void take_step(struct eval *v, struct knot_step s, const double *x)
 {
     double *value = v->value.at;
-    for (size_t i = 0; i < steps->n; i++) {
-        struct knot_step s = steps->at[i];
-        bool is_diagram = graph_at(v->g, s.node)->op == OP_DIAGRAM;
-        if (s.input != NO_INPUT && x)
-            value[s.node] = x[s.input];
-        else
-            value[s.node] = eval_node(v, s.node, is_diagram ? (size_t)value[s.node] : 0);
-    }
+    bool is_diagram = graph_at(v->g, s.node)->op == OP_DIAGRAM;
+    if (s.input != NO_INPUT && x)
+        value[s.node] = x[s.input];
+    else
+        value[s.node] = eval_node(v, s.node, is_diagram ? (size_t)value[s.node] : 0);
+}
+
+void knot_walk(struct eval *v, const struct knot_steps *steps, const double *x)
+{
+    for (size_t i = 0; i < steps->n; i++)
+        take_step(v, steps->at[i], x);
+}
+
+static void look_up(struct knots *k, const struct knot_lookup *l)
+{
+    struct eval *v = k->v;
+    node_id n = k->steps.at[l->step].node;
+    for (size_t i = 0; i < l->n; i++)
+        l->x[i] = k->x.at[l->place[i]];
+    memo_diagram(l->memo, l->x, v->results.at + (size_t)v->value.at[n]);
+}
+
+static const double *blend_results(struct knots *k)
+{
+    const double *known = k->blend_memo ? memo_find(k->blend_memo, k->x.at) : NULL;
+    if (known)
+        return known;
+    const double *results = blend_at(k->blend, k->x.at);
+    if (k->blend_memo)
+        memo_keep(k->blend_memo, k->x.at, results);
+    return results;
 }
 
 static const double *results_at(struct knots *k)
 {
     if (k->blend)
-        return blend_at(k->blend, k->x.at);
-    knot_walk(k->v, &k->steps, k->x.at);
+        return blend_results(k);
+    for (size_t i = 0, next = 0; i < k->steps.n; i++) {
+        if (next < k->lookups.n && k->lookups.at[next].step == i)
+            look_up(k, &k->lookups.at[next++]);
+        else
+            take_step(k->v, k->steps.at[i], k->x.at);
+    }
     return &k->v->value.at[k->node];
 }
 
@@ -305,17 +334,79 @@ void knots_init(struct knots *k, struct arena *a, struct eval *v, const struct m
     k->search = (struct knot_search){.arena = a, .g = v->g};
 }
 
+/* ---- memos ---- */
+
+/* The one that was not used for longest, or NULL where all are in use. */
+static struct knot_memo *oldest_memo(struct knots *k)
+{
+    struct knot_memo *oldest = &k->memos[0];
+    for (size_t i = 1; i < KNOT_MEMOS; i++)
+        if (k->memos[i].used < oldest->used)
+            oldest = &k->memos[i];
+    return oldest->used < k->knot ? oldest : NULL;
+}
+
+/* Of a DIAGRAM over windows; NULL where there is none. */
+static struct memo *memo_for(struct knots *k, node_id diagram, size_t n, const uint32_t *inputs)
+{
+    if (graph_windows_of(k->v->g, diagram).n == 0)
+        return NULL;
+    for (size_t i = 0; i < KNOT_MEMOS; i++)
+        if (k->memos[i].memo && memo_is_of(k->memos[i].memo, diagram, n, inputs)) {
+            k->memos[i].used = k->knot;
+            return k->memos[i].memo;
+        }
+    struct knot_memo *m = oldest_memo(k);
+    if (!m)
+        return NULL;
+    arena_free(m->arena);
+    *m = (struct knot_memo){.used = k->knot};
+    m->arena = arena_child(k->arena);
+    return m->memo = memo_new(m->arena, k->v, diagram, n, inputs);
+}
+
+static void find_lookup(struct knots *k, size_t step, const uint32_t *curved)
+{
+    size_t n_all, n = 0;
+    node_id diagram = k->steps.at[step].node;
+    const uint32_t *all = graph_uncertain(k->v->g, diagram, &n_all);
+    uint32_t *inputs = NEW_ARRAY(k->scratch, k->n_inputs, uint32_t);
+    struct knot_lookup l = {.step = step};
+    l.place = NEW_ARRAY(k->scratch, k->n_inputs, uint32_t);
+    l.x = NEW_ARRAY(k->scratch, k->n_inputs, double);
+    for (size_t i = 0; i < k->n_inputs; i++)
+        if (knot_place(all, n_all, curved[i]) != NO_INPUT) {
+            l.place[n] = (uint32_t)i;
+            inputs[n++] = curved[i];
+        }
+    l.n = n;
+    l.memo = memo_for(k, diagram, n, inputs);
+    if (l.memo)
+        *array_push(k->arena, &k->lookups) = l;
+}
+
+static void find_lookups(struct knots *k, const uint32_t *curved)
+{
+    k->lookups.n = 0;
+    for (size_t i = 0; i < k->steps.n; i++)
+        if (graph_at(k->v->g, k->steps.at[i].node)->op == OP_DIAGRAM)
+            find_lookup(k, i, curved);
+}
+
+/* ---- one node ---- */
+
 static ohmen_status integrate_blend(struct knots *k, size_t *sets, ohmen_error *e)
 {
-    struct arena *a = arena_child(k->arena);
-    ohmen_status status = blend_new(a, k->v, &k->spreads, &k->search, k->node, &k->blend, e);
+    ohmen_status status =
+        blend_new(k->scratch, k->v, &k->spreads, &k->search, k->node, &k->blend, e);
     if (status == OHMEN_OK) {
-        find_inputs(k, blend_inputs(k->blend, &k->n_inputs));
+        const uint32_t *inputs = blend_inputs(k->blend, &k->n_inputs);
+        find_inputs(k, inputs);
+        k->blend_memo = blend_has_own(k->blend) ? NULL : memo_for(k, k->node, k->n_inputs, inputs);
         status = integrate_or_sample(k, sets, e);
         blend_end(k->blend);
     }
     k->blend = NULL;
-    arena_free(a);
     return status;
 }
 
@@ -325,6 +416,7 @@ static ohmen_status integrate_plainly(struct knots *k, size_t *sets, ohmen_error
     find_inputs(k, curved);
     k->steps.n = 0;
     knot_find_steps(&k->search, 1, &k->node, k->n_inputs, curved, &k->steps);
+    find_lookups(k, curved);
     ohmen_status status = integrate_or_sample(k, sets, e);
     knot_walk(k->v, &k->steps, NULL);
     return status;
@@ -334,6 +426,10 @@ ohmen_status knot_integrate(struct knots *k, node_id n, size_t *sets, ohmen_erro
 {
     bool is_diagram = graph_at(k->v->g, n)->op == OP_DIAGRAM;
     k->node = n;
+    k->knot++;
     k->n_results = is_diagram ? eval_results(k->v, n) : 1;
-    return is_diagram ? integrate_blend(k, sets, e) : integrate_plainly(k, sets, e);
+    k->scratch = arena_child(k->arena);
+    ohmen_status status = is_diagram ? integrate_blend(k, sets, e) : integrate_plainly(k, sets, e);
+    arena_free(k->scratch);
+    return status;
 }

@@ -42,9 +42,29 @@ void knot_walk(struct eval *v, const struct knot_steps *steps, const double *x);
 uint32_t knot_place(const uint32_t *inputs, size_t n, uint32_t input);
 
 struct blend;
+struct memo;
+
+/* A DIAGRAM among the steps whose results are looked up; x: values of its inputs, which are at
+ * `place` among the knot's. */
+struct knot_lookup {
+    size_t step;
+    struct memo *memo;
+    size_t n;
+    uint32_t *place;
+    double *x;
+};
+
+/* Of the last diagrams. */
+enum { KNOT_MEMOS = 4 };
+struct knot_memo {
+    struct arena *arena;
+    struct memo *memo;
+    uint64_t used; /* by which knot, last */
+};
 
 struct knots {
     struct arena *arena;
+    struct arena *scratch; /* for one knot */
     struct eval *v;
     struct spreads spreads;
     struct knot_search search;
@@ -54,11 +74,15 @@ struct knots {
     ARRAY(struct spread *) inputs;
     struct knot_steps steps; /* the last is the knot itself, unless it is blended */
     struct blend *blend;     /* of a DIAGRAM (blend.h) */
-    ARRAY(double) x;         /* values of the inputs */
-    ARRAY(double) size;      /* of each result: the integral of its absolute value */
-    ARRAY(double) before;    /* each mean as it was a level before */
-    double weight;           /* of all points so far */
-    ARRAY(double) mean;      /* result k of set s: mean[s * n_results + k] */
+    struct memo *blend_memo; /* NULL where it has inputs of its own */
+    ARRAY(struct knot_lookup) lookups;
+    struct knot_memo memos[KNOT_MEMOS];
+    uint64_t knot;        /* its number */
+    ARRAY(double) x;      /* values of the inputs */
+    ARRAY(double) size;   /* of each result: the integral of its absolute value */
+    ARRAY(double) before; /* each mean as it was a level before */
+    double weight;        /* of all points so far */
+    ARRAY(double) mean;   /* result k of set s: mean[s * n_results + k] */
 };
 
 void knots_init(struct knots *k, struct arena *a, struct eval *v, const struct mean_source *source);

@@ -95,6 +95,16 @@ static void add_results(struct averages *v, void *ctx)
 
 /* ---- sets of points ---- */
 
+static double positive(double x)
+{
+    return x > 0 ? x : 0;
+}
+
+static double greater(double x, double y)
+{
+    return x > y ? x : y;
+}
+
 void averages_moments(const struct averages *v, size_t i, struct moments *at)
 {
     const struct gathered *points = &v->points;
@@ -102,9 +112,11 @@ void averages_moments(const struct averages *v, size_t i, struct moments *at)
     *at = (struct moments){0};
     for (size_t k = 0; k < points->n; k++) {
         const struct stretch *now = &points->now[k][i];
-        at->since[k] = fmax(points->t[k] - now->origin, 0);
-        at->age[k] = fmax(points->t[k] - born, 0);
+        at->since[k] = positive(points->t[k] - now->origin);
+        at->age[k] = positive(points->t[k] - born);
         at->left[k] = !now->fresh;
+        at->latest_since = greater(at->latest_since, at->since[k]);
+        at->latest_age = greater(at->latest_age, at->age[k]);
     }
 }
 
@@ -112,6 +124,7 @@ static void make_set(struct averages *v, struct kept_set *s)
 {
     s->p = NEW_ARRAY(v->arena, v->n_varying, lanes);
     s->q = NEW_ARRAY(v->arena, v->n_varying, lanes);
+    s->at = NEW_ARRAY(v->arena, v->n_varying, struct moments);
     s->edition = NEW_ARRAY(v->arena, v->n_varying, uint64_t);
 }
 
@@ -145,14 +158,14 @@ static void place_courses(struct averages *v)
     memcpy(s->begin, v->points.begin, sizeof s->begin);
     for (size_t i = 0; i < v->n_varying; i++) {
         const struct varying *one = &v->varying[i];
-        struct moments at;
         v->p[one->variable] = s->p[i];
         v->q[one->variable] = s->q[i];
         if (known && s->edition[i] == one->edition)
             continue;
         s->edition[i] = one->edition;
-        averages_moments(v, i, &at);
-        course_lanes(&one->versions, &at, s->p[i], s->q[i]);
+        if (!known)
+            averages_moments(v, i, &s->at[i]);
+        course_lanes(&one->versions, &s->at[i], s->p[i], s->q[i]);
     }
 }
 

@@ -57,12 +57,14 @@ struct extreme average_extreme(const struct course *c, const struct mixture *m,
                                const struct windows *w)
 {
     enum { YOUNG, LEFT, OLD };
-    struct moments at = {.left = {!c->fresh, 1, !c->fresh}, .since = {[OLD] = oldest(c, w)}};
+    struct moments at = {.left = {!c->fresh, 1, !c->fresh}};
     struct habits h = habits_of(m);
     lanes p, q;
     double age = 0;
     for (size_t k = 0; k < w->n; k++)
         age = fmax(age, w->at[k].to - c->born);
+    at.since[OLD] = at.latest_since = oldest(c, w);
+    at.latest_age = age;
     for (int i = 0; i < LANES; i++)
         at.age[i] = age;
     course_lanes(m, &at, p, q);

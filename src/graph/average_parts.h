@@ -36,6 +36,7 @@ struct kept_set {
     size_t n; /* 0: not made */
     lanes t, begin;
     lanes *p, *q;
+    struct moments *at;
     uint64_t *edition;
 };
 

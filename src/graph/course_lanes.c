@@ -38,6 +38,19 @@ static void lose_little(const double *restrict y, double *restrict lost, double 
     }
 }
 
+/* The same for y <= 1/1024. */
+static void lose_least(const double *restrict y, double *restrict lost, double *restrict left)
+{
+    for (int i = 0; i < LANES; i++) {
+        double z = y[i], sum = 1.0 / 120;
+        sum = 1.0 / 24 - z * sum;
+        sum = 1.0 / 6 - z * sum;
+        sum = 0.5 - z * sum;
+        lost[i] = z * (1 - z * sum);
+        left[i] = 1 - lost[i];
+    }
+}
+
 /* The same for y <= 1/4. */
 static void lose_more(const double *restrict y, double *restrict lost, double *restrict left)
 {
@@ -83,7 +96,9 @@ static void decay_lanes(double s, const double *x, double latest, struct decay *
     for (; most > 0.25; most /= 2, part /= 2)
         doublings++;
     scale(s, part, x, y);
-    if (most <= 0x1p-6)
+    if (most <= 0x1p-10)
+        lose_least(y, to->lost, to->left);
+    else if (most <= 0x1p-6)
         lose_little(y, to->lost, to->left);
     else
         lose_more(y, to->lost, to->left);
@@ -133,8 +148,7 @@ static void add_unreset(const struct part *restrict m, struct part *restrict h)
     }
 }
 
-static void reset_lanes(const double x[COURSE_ARGS], const struct moments *at, double latest,
-                        struct part *to)
+static void reset_lanes(const double x[COURSE_ARGS], const struct moments *at, struct part *to)
 {
     struct decay d;
     double rate = x[COURSE_RATE], ending = x[COURSE_ENDING], left = x[COURSE_LEFT];
@@ -142,21 +156,20 @@ static void reset_lanes(const double x[COURSE_ARGS], const struct moments *at, d
         never(to);
         return;
     }
-    decay_lanes(rate + ending, at->since, latest, &d);
+    decay_lanes(rate + ending, at->since, at->latest_since, &d);
     if (left == 0)
         rise_lanes(&d, rate, ending, to);
     else
         change_from(&d, rate, ending, left, at->left, to);
 }
 
-static void unreset_lanes(const double x[COURSE_ARGS], const struct moments *at, double latest,
-                          struct part *to)
+static void unreset_lanes(const double x[COURSE_ARGS], const struct moments *at, struct part *to)
 {
     struct decay d;
     struct part m;
     if (x[COURSE_UNRESET] == 0)
         return;
-    decay_lanes(x[COURSE_UNRESET] + x[COURSE_ENDING], at->age, latest, &d);
+    decay_lanes(x[COURSE_UNRESET] + x[COURSE_ENDING], at->age, at->latest_age, &d);
     rise_lanes(&d, x[COURSE_UNRESET], x[COURSE_ENDING], &m);
     add_unreset(&m, to);
 }
@@ -171,23 +184,14 @@ static void add_version(double weight, double standing, const struct part *restr
     }
 }
 
-static double latest(const double *x)
-{
-    double most = 0;
-    for (int k = 0; k < LANES; k++)
-        most = fmax(most, x[k]);
-    return most;
-}
-
 void course_lanes(const struct mixture *m, const struct moments *at, double *p, double *q)
 {
     struct part change;
-    double since = latest(at->since), age = latest(at->age);
     for (int k = 0; k < LANES; k++)
         p[k] = q[k] = 0;
     for (size_t i = 0; i < m->n; i++) {
-        reset_lanes(m->x[i], at, since, &change);
-        unreset_lanes(m->x[i], at, age, &change);
+        reset_lanes(m->x[i], at, &change);
+        unreset_lanes(m->x[i], at, &change);
         add_version(m->weight[i], m->x[i][COURSE_STANDING], &change, p, q);
     }
 }

@@ -19,7 +19,8 @@ struct mixture {
 /* Where the course is at some times. */
 struct moments {
     lanes since, age; /* as for course_change; neither negative */
-    lanes left;       /* 1 where h starts at `left`, 0 where it is fresh */
+    double latest_since, latest_age;
+    lanes left; /* 1 where h starts at `left`, 0 where it is fresh */
 };
 
 /* p[k] and q[k] = 1 - p[k] at time k, means over the versions, within 1e-14 relative each while
