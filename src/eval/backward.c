@@ -92,8 +92,7 @@ static void node_backward(struct eval *v, node_id n, double *derivative)
         diagram_node_backward(v, n, derivative);
         return;
     }
-    graph_node_backward(v->g, n, eval_gather(v, n), v->value.at[n], derivative[n],
-                        v->arg_back.at);
+    graph_node_backward(v->g, n, eval_gather(v, n), v->value.at[n], derivative[n], v->arg_back.at);
     hand_on(v, n, derivative);
 }
 

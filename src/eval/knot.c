@@ -2,11 +2,15 @@
 /* Integration of one node. The nodes between it and its curved inputs are found once; then, at
  * each point, these are evaluated anew in the values of the evaluation itself, where everything
  * else stands at its point value, and in the end once more with the inputs at their means, which
- * gives the old values back. Owns its scratch arrays.
+ * gives the old values back. A DIAGRAM is a blend (blend.h) at each point. Owns its scratch
+ * arrays.
  *
  * Invariant: no sum depends on numbers of nodes or inputs; two inputs are taken in the order of
  * their names. */
 #include "eval/knot.h"
+
+#include "eval/blend.h"
+#include "eval/memo.h"
 
 #include <math.h>
 #include <string.h>
@@ -28,25 +32,23 @@ static const size_t last_level[3] = {0, SPREAD_LEVELS - 1, 2};
 
 /* ---- what depends on the inputs ---- */
 
-/* The place of an input among the curved ones, which rise. */
-static uint32_t place_of(const uint32_t *curved, size_t n, uint32_t input)
+uint32_t knot_place(const uint32_t *inputs, size_t n, uint32_t input)
 {
     size_t low = 0, high = n;
     while (low < high) {
         size_t middle = low + (high - low) / 2;
-        if (curved[middle] < input)
+        if (inputs[middle] < input)
             low = middle + 1;
         else
             high = middle;
     }
-    return low < n && curved[low] == input ? (uint32_t)low : NO_INPUT;
+    return low < n && inputs[low] == input ? (uint32_t)low : NO_INPUT;
 }
 
-static void begin_search(struct knots *k)
+static void begin_search(struct knot_search *k)
 {
-    k->steps.n = 0;
     k->search++;
-    size_t size = graph_size(k->v->g), had = k->seen.n;
+    size_t size = graph_size(k->g), had = k->seen.n;
     if (had >= size)
         return;
     array_reserve(k->arena, &k->seen, size - had);
@@ -55,71 +57,110 @@ static void begin_search(struct knots *k)
 }
 
 /* Goes down to a node, unless it was met or is certain. True when it is known to depend. */
-static bool descend(struct knots *k, node_id n)
+static bool descend(struct knot_search *k, node_id n)
 {
     if (k->seen.at[n] >> 1 == k->search)
         return k->seen.at[n] & 1;
     k->seen.at[n] = 2 * k->search;
-    if (graph_degree(k->v->g, n) > 0)
+    if (graph_degree(k->g, n) > 0)
         *array_push(k->arena, &k->stack) = (struct knot_frame){.node = n};
     return false;
 }
 
-static void leave(struct knots *k, struct knot_frame f, uint32_t input)
+static void leave(struct knot_search *k, struct knot_frame f, uint32_t input, struct knot_steps *to)
 {
     k->stack.n--;
     if (!f.depends && input == NO_INPUT)
         return;
     k->seen.at[f.node] |= 1;
-    *array_push(k->arena, &k->steps) = (struct knot_step){f.node, input};
+    *array_push(k->arena, to) = (struct knot_step){f.node, input};
     if (k->stack.n)
         array_last(&k->stack)->depends = true;
 }
 
-/* The nodes from the curved inputs up to `root`, arguments before what uses them. */
-static void find_steps(struct knots *k, node_id root, const uint32_t *curved, size_t n_curved)
+static void search(struct knot_search *k, size_t n_inputs, const uint32_t *inputs,
+                   struct knot_steps *to)
 {
-    const struct graph *g = k->v->g;
-    begin_search(k);
-    descend(k, root);
     while (k->stack.n) {
         struct knot_frame *f = array_last(&k->stack);
-        const struct graph_node *node = graph_at(g, f->node);
+        const struct graph_node *node = graph_at(k->g, f->node);
         if (f->next < node->n) {
-            node_id arg = graph_args(g, f->node)[f->next++];
+            node_id arg = graph_args(k->g, f->node)[f->next++];
             size_t at = k->stack.n - 1;
             if (descend(k, arg))
                 k->stack.at[at].depends = true;
             continue;
         }
-        leave(k, *f, node->op == OP_INPUT ? place_of(curved, n_curved, node->extra) : NO_INPUT);
+        bool is_input = node->op == OP_INPUT;
+        leave(k, *f, is_input ? knot_place(inputs, n_inputs, node->extra) : NO_INPUT, to);
+    }
+}
+
+void knot_find_steps(struct knot_search *k, size_t n_roots, const node_id *roots, size_t n_inputs,
+                     const uint32_t *inputs, struct knot_steps *to)
+{
+    begin_search(k);
+    for (size_t i = 0; i < n_roots; i++) {
+        descend(k, roots[i]);
+        search(k, n_inputs, inputs, to);
     }
 }
 
 /* ---- one point ---- */
 
-/* The node at the inputs k->x, or at their means. */
-static void evaluate(const struct knots *k, bool at_means)
+static void take_step(struct eval *v, struct knot_step s, const double *x)
 {
-    double *value = k->v->value.at;
-    for (size_t i = 0; i < k->steps.n; i++) {
-        struct knot_step s = k->steps.at[i];
-        bool is_diagram = graph_at(k->v->g, s.node)->op == OP_DIAGRAM;
-        if (s.input != NO_INPUT && !at_means)
-            value[s.node] = k->x.at[s.input];
+    double *value = v->value.at;
+    bool is_diagram = graph_at(v->g, s.node)->op == OP_DIAGRAM;
+    if (s.input != NO_INPUT && x)
+        value[s.node] = x[s.input];
+    else
+        value[s.node] = eval_node(v, s.node, is_diagram ? (size_t)value[s.node] : 0);
+}
+
+void knot_walk(struct eval *v, const struct knot_steps *steps, const double *x)
+{
+    for (size_t i = 0; i < steps->n; i++)
+        take_step(v, steps->at[i], x);
+}
+
+static void look_up(struct knots *k, const struct knot_lookup *l)
+{
+    struct eval *v = k->v;
+    node_id n = k->steps.at[l->step].node;
+    for (size_t i = 0; i < l->n; i++)
+        l->x[i] = k->x.at[l->place[i]];
+    memo_diagram(l->memo, l->x, v->results.at + (size_t)v->value.at[n]);
+}
+
+static const double *blend_results(struct knots *k)
+{
+    const double *known = k->blend_memo ? memo_find(k->blend_memo, k->x.at) : NULL;
+    if (known)
+        return known;
+    const double *results = blend_at(k->blend, k->x.at);
+    if (k->blend_memo)
+        memo_keep(k->blend_memo, k->x.at, results);
+    return results;
+}
+
+static const double *results_at(struct knots *k)
+{
+    if (k->blend)
+        return blend_results(k);
+    for (size_t i = 0, next = 0; i < k->steps.n; i++) {
+        if (next < k->lookups.n && k->lookups.at[next].step == i)
+            look_up(k, &k->lookups.at[next++]);
         else
-            value[s.node] = eval_node(k->v, s.node, is_diagram ? (size_t)value[s.node] : 0);
+            take_step(k->v, k->steps.at[i], k->x.at);
     }
+    return &k->v->value.at[k->node];
 }
 
 /* Adds weight times the results at the inputs k->x to sum; false when one is not finite. */
 static bool add_point(struct knots *k, double weight, double *sum)
 {
-    evaluate(k, false);
-    node_id root = array_last(&k->steps)->node;
-    const double *value = &k->v->value.at[root];
-    if (graph_at(k->v->g, root)->op == OP_DIAGRAM)
-        value = k->v->results.at + (size_t)*value;
+    const double *value = results_at(k);
     for (size_t i = 0; i < k->n_results; i++) {
         if (!isfinite(value[i]))
             return false;
@@ -161,6 +202,15 @@ static bool add_plane(struct knots *k, size_t level)
     return true;
 }
 
+static bool add_points(struct knots *k, size_t level)
+{
+    switch (k->n_inputs) {
+    case 0: return add_point(k, 1, k->mean.at);
+    case 1: return add_line(k, level);
+    default: return add_plane(k, level);
+    }
+}
+
 /* How much the level has changed the means, as a part of their sizes: the most of all results.
  * The means of now become those of before. */
 static double change(struct knots *k)
@@ -189,7 +239,7 @@ static ohmen_status find_rules(struct knots *k, size_t level, bool *are_discrete
 
 static ohmen_status no_mean(const struct knots *k, ohmen_error *e)
 {
-    node_id n = array_last(&k->steps)->node;
+    node_id n = k->node;
     return error_set(e, OHMEN_COMPUTE, "node %u (%s) of the calculation has no finite mean",
                      (unsigned)n, graph_op_info(graph_at(k->v->g, n)->op)->name);
 }
@@ -203,7 +253,7 @@ static ohmen_status integrate(struct knots *k, double *reached, ohmen_error *e)
         ohmen_status status = find_rules(k, level, &are_discrete, e);
         if (status != OHMEN_OK)
             return status;
-        if (!(k->n_inputs == 1 ? add_line(k, level) : add_plane(k, level)))
+        if (!add_points(k, level))
             return no_mean(k, e);
         *reached = change(k);
         if (are_discrete)
@@ -239,7 +289,7 @@ static ohmen_status sample(struct knots *k, ohmen_error *e)
 static void find_inputs(struct knots *k, const uint32_t *curved)
 {
     k->inputs.n = k->x.n = 0;
-    array_reserve(k->arena, &k->x, k->n_inputs);
+    array_reserve(k->arena, &k->x, k->n_inputs + 1);
     for (size_t i = 0; i < k->n_inputs; i++)
         *array_push(k->arena, &k->inputs) = spreads_find(&k->spreads, curved[i]);
 }
@@ -268,7 +318,7 @@ static ohmen_status integrate_or_sample(struct knots *k, size_t *sets, ohmen_err
     if (k->n_inputs <= 2) {
         clear_sums(k, 1);
         ohmen_status status = integrate(k, &reached, e);
-        if (status != OHMEN_OK || k->n_inputs == 1 || reached <= NEAR)
+        if (status != OHMEN_OK || k->n_inputs < 2 || reached <= NEAR)
             return status;
     }
     *sets = MEAN_SETS;
@@ -276,14 +326,110 @@ static ohmen_status integrate_or_sample(struct knots *k, size_t *sets, ohmen_err
     return sample(k, e);
 }
 
+void knots_init(struct knots *k, struct arena *a, struct eval *v, const struct mean_source *source)
+{
+    k->arena = a;
+    k->v = v;
+    k->spreads = (struct spreads){.arena = a, .source = source};
+    k->search = (struct knot_search){.arena = a, .g = v->g};
+}
+
+/* ---- memos ---- */
+
+/* The one that was not used for longest, or NULL where all are in use. */
+static struct knot_memo *oldest_memo(struct knots *k)
+{
+    struct knot_memo *oldest = &k->memos[0];
+    for (size_t i = 1; i < KNOT_MEMOS; i++)
+        if (k->memos[i].used < oldest->used)
+            oldest = &k->memos[i];
+    return oldest->used < k->knot ? oldest : NULL;
+}
+
+/* Of a DIAGRAM over windows; NULL where there is none. */
+static struct memo *memo_for(struct knots *k, node_id diagram, size_t n, const uint32_t *inputs)
+{
+    if (graph_windows_of(k->v->g, diagram).n == 0)
+        return NULL;
+    for (size_t i = 0; i < KNOT_MEMOS; i++)
+        if (k->memos[i].memo && memo_is_of(k->memos[i].memo, diagram, n, inputs)) {
+            k->memos[i].used = k->knot;
+            return k->memos[i].memo;
+        }
+    struct knot_memo *m = oldest_memo(k);
+    if (!m)
+        return NULL;
+    arena_free(m->arena);
+    *m = (struct knot_memo){.used = k->knot};
+    m->arena = arena_child(k->arena);
+    return m->memo = memo_new(m->arena, k->v, diagram, n, inputs);
+}
+
+static void find_lookup(struct knots *k, size_t step, const uint32_t *curved)
+{
+    size_t n_all, n = 0;
+    node_id diagram = k->steps.at[step].node;
+    const uint32_t *all = graph_uncertain(k->v->g, diagram, &n_all);
+    uint32_t *inputs = NEW_ARRAY(k->scratch, k->n_inputs, uint32_t);
+    struct knot_lookup l = {.step = step};
+    l.place = NEW_ARRAY(k->scratch, k->n_inputs, uint32_t);
+    l.x = NEW_ARRAY(k->scratch, k->n_inputs, double);
+    for (size_t i = 0; i < k->n_inputs; i++)
+        if (knot_place(all, n_all, curved[i]) != NO_INPUT) {
+            l.place[n] = (uint32_t)i;
+            inputs[n++] = curved[i];
+        }
+    l.n = n;
+    l.memo = memo_for(k, diagram, n, inputs);
+    if (l.memo)
+        *array_push(k->arena, &k->lookups) = l;
+}
+
+static void find_lookups(struct knots *k, const uint32_t *curved)
+{
+    k->lookups.n = 0;
+    for (size_t i = 0; i < k->steps.n; i++)
+        if (graph_at(k->v->g, k->steps.at[i].node)->op == OP_DIAGRAM)
+            find_lookup(k, i, curved);
+}
+
+/* ---- one node ---- */
+
+static ohmen_status integrate_blend(struct knots *k, size_t *sets, ohmen_error *e)
+{
+    ohmen_status status =
+        blend_new(k->scratch, k->v, &k->spreads, &k->search, k->node, &k->blend, e);
+    if (status == OHMEN_OK) {
+        const uint32_t *inputs = blend_inputs(k->blend, &k->n_inputs);
+        find_inputs(k, inputs);
+        k->blend_memo = blend_has_own(k->blend) ? NULL : memo_for(k, k->node, k->n_inputs, inputs);
+        status = integrate_or_sample(k, sets, e);
+        blend_end(k->blend);
+    }
+    k->blend = NULL;
+    return status;
+}
+
+static ohmen_status integrate_plainly(struct knots *k, size_t *sets, ohmen_error *e)
+{
+    const uint32_t *curved = graph_curved(k->v->g, k->node, &k->n_inputs);
+    find_inputs(k, curved);
+    k->steps.n = 0;
+    knot_find_steps(&k->search, 1, &k->node, k->n_inputs, curved, &k->steps);
+    find_lookups(k, curved);
+    ohmen_status status = integrate_or_sample(k, sets, e);
+    knot_walk(k->v, &k->steps, NULL);
+    return status;
+}
+
 ohmen_status knot_integrate(struct knots *k, node_id n, size_t *sets, ohmen_error *e)
 {
     bool is_diagram = graph_at(k->v->g, n)->op == OP_DIAGRAM;
+    k->node = n;
+    k->knot++;
     k->n_results = is_diagram ? eval_results(k->v, n) : 1;
-    const uint32_t *curved = graph_curved(k->v->g, n, &k->n_inputs);
-    find_inputs(k, curved);
-    find_steps(k, n, curved, k->n_inputs);
-    ohmen_status status = integrate_or_sample(k, sets, e);
-    evaluate(k, true);
+    k->scratch = arena_child(k->arena);
+    ohmen_status status = is_diagram ? integrate_blend(k, sets, e) : integrate_plainly(k, sets, e);
+    arena_free(k->scratch);
     return status;
 }

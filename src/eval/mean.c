@@ -4,6 +4,10 @@
  * (knot.c); any other gets what its rule makes of the means of its arguments, for which these
  * are put in place of the point values for a moment.
  *
+ * HELD stands at the mean of its argument while means are taken, and so does all that it moves: such
+ * nodes get other values for that time (`moved`), computed anew from there. What is certain apart
+ * from that has its other value for a mean.
+ *
  * Owns the means of curved nodes. Those of a DIAGRAM, which has many, lie in the results of the
  * evaluation, and its mean is their place, as its value is. Invariant: outside means_update the
  * values of the evaluation are point values. */
@@ -37,6 +41,8 @@ struct means {
     ARRAY(struct curved) curved;
     ARRAY(double) mean;
     ARRAY(struct dressed) dressed; /* scratch */
+    ARRAY(bool) is_moved;          /* by node; none before the first that is */
+    ARRAY(struct dressed) moved;   /* and its value at other times, or just then */
 };
 
 struct means *means_new(struct arena *a, struct eval *v, const struct mean_source *source)
@@ -44,9 +50,7 @@ struct means *means_new(struct arena *a, struct eval *v, const struct mean_sourc
     struct means *m = NEW(a, struct means);
     m->arena = a;
     m->v = v;
-    m->knots.arena = a;
-    m->knots.v = v;
-    m->knots.spreads = (struct spreads){.arena = a, .source = source};
+    knots_init(&m->knots, a, v, source);
     return m;
 }
 
@@ -59,6 +63,16 @@ static const struct curved *curved_of(const struct means *m, node_id n)
 static double mean_in(const struct means *m, const struct curved *c, size_t set)
 {
     return m->mean.at[c->first + (c->sets > 1 ? set : 0)];
+}
+
+/* Of a curved node, over all sets. */
+static double means_of(const struct means *m, node_id n)
+{
+    const struct curved *c = curved_of(m, n);
+    double sum = 0;
+    for (size_t s = 0; s < c->sets; s++)
+        sum += mean_in(m, c, s);
+    return sum / c->sets;
 }
 
 /* Begins the record of node n; `sets` means are still to be pushed. */
@@ -100,6 +114,12 @@ static ohmen_status integrate(struct means *m, node_id n, ohmen_error *e)
 }
 
 /* ---- other nodes ---- */
+
+static ohmen_status no_mean(const struct means *m, node_id n, ohmen_error *e)
+{
+    return error_set(e, OHMEN_COMPUTE, "node %u (%s) of the calculation has no finite mean",
+                     (unsigned)n, graph_op_info(graph_at(m->v->g, n)->op)->name);
+}
 
 static void find_curved(struct means *m, node_id n)
 {
@@ -152,41 +172,120 @@ static ohmen_status propagate(struct means *m, node_id n, ohmen_error *e)
     for (size_t s = 0; s < sets; s++) {
         double x = value_at_means(m, n, s);
         if (!isfinite(x))
-            return error_set(e, OHMEN_COMPUTE, "node %u (%s) of the calculation has no finite mean",
-                             (unsigned)n, graph_op_info(graph_at(m->v->g, n)->op)->name);
+            return no_mean(m, n, e);
         *array_push(m->arena, &m->mean) = x;
     }
     return OHMEN_OK;
 }
 
+/* ---- what HELD moves ---- */
+
+static bool is_moved(const struct means *m, node_id n)
+{
+    return n < m->is_moved.n && m->is_moved.at[n];
+}
+
+/* Whether node n reads what is moved, or holds what has another mean than its value. */
+static bool moves(const struct means *m, node_id n)
+{
+    const struct graph *g = m->v->g;
+    const node_id *args = graph_args(g, n);
+    if (graph_at(g, n)->op == OP_HELD && curved_of(m, args[0]))
+        return true;
+    for (uint32_t i = 0; i < graph_at(g, n)->n && m->moved.n; i++)
+        if (is_moved(m, args[i]))
+            return true;
+    return false;
+}
+
+static double moved_value(struct means *m, node_id n)
+{
+    struct eval *v = m->v;
+    size_t place = v->results.n;
+    if (graph_at(v->g, n)->op == OP_HELD)
+        return means_of(m, graph_args(v->g, n)[0]);
+    if (graph_at(v->g, n)->op == OP_DIAGRAM) {
+        array_reserve(v->arena, &v->results, eval_results(v, n));
+        v->results.n += eval_results(v, n);
+    }
+    return eval_node(v, n, place);
+}
+
+/* Moves node n; false when it is not finite there. */
+static bool move(struct means *m, node_id n)
+{
+    double x = moved_value(m, n);
+    if (!isfinite(x))
+        return false;
+    size_t had = m->is_moved.n;
+    array_reserve(m->arena, &m->is_moved, n + 1 - had);
+    array_zero(m->is_moved.at + had, (n + 1 - had) * sizeof *m->is_moved.at);
+    m->is_moved.n = n + 1;
+    m->is_moved.at[n] = true;
+    *array_push(m->arena, &m->moved) = (struct dressed){n, m->v->value.at[n]};
+    m->v->value.at[n] = x;
+    return true;
+}
+
+/* From point values to moved ones, and back. */
+static void change_over(struct means *m)
+{
+    for (size_t i = 0; i < m->moved.n; i++) {
+        struct dressed *d = &m->moved.at[i];
+        double x = m->v->value.at[d->node];
+        m->v->value.at[d->node] = d->value;
+        d->value = x;
+    }
+}
+
+/* The mean of what is certain and moved. */
+static void remember_moved(struct means *m, node_id n)
+{
+    enum mean_method method = MEAN_EXACT;
+    const node_id *args = graph_args(m->v->g, n);
+    for (uint32_t i = 0; i < graph_at(m->v->g, n)->n; i++)
+        if (curved_of(m, args[i]) && curved_of(m, args[i])->method > method)
+            method = curved_of(m, args[i])->method;
+    remember(m, n, 1, method);
+    *array_push(m->arena, &m->mean) = m->v->value.at[n];
+}
+
 /* ---- questions ---- */
+
+static ohmen_status update_node(struct means *m, node_id n, ohmen_error *e)
+{
+    bool moved = is_moved(m, n);
+    if (!moved && moves(m, n)) {
+        if (!move(m, n))
+            return no_mean(m, n, e);
+        moved = true;
+    }
+    if (graph_degree(m->v->g, n) >= 2)
+        return graph_bends(m->v->g, n) ? integrate(m, n, e) : propagate(m, n, e);
+    if (moved)
+        remember_moved(m, n);
+    return OHMEN_OK;
+}
 
 ohmen_status means_update(struct means *m, node_id *culprit, ohmen_error *e)
 {
-    for (; m->done < m->v->done; m->done++) {
-        node_id n = (node_id)m->done;
-        if (graph_degree(m->v->g, n) < 2)
-            continue;
-        ohmen_status status = graph_bends(m->v->g, n) ? integrate(m, n, e) : propagate(m, n, e);
-        if (status == OHMEN_OK)
-            continue;
-        if (culprit)
-            *culprit = n;
-        return status;
+    ohmen_status status = OHMEN_OK;
+    change_over(m);
+    for (; m->done < m->v->done && status == OHMEN_OK; m->done++) {
+        status = update_node(m, (node_id)m->done, e);
+        if (status != OHMEN_OK && culprit)
+            *culprit = (node_id)m->done;
     }
-    return OHMEN_OK;
+    if (status != OHMEN_OK)
+        m->done--;
+    change_over(m);
+    return status;
 }
 
 double means_value(const struct means *m, node_id n)
 {
     assert(n < m->done && graph_at(m->v->g, n)->op != OP_DIAGRAM);
-    const struct curved *c = curved_of(m, n);
-    if (!c)
-        return eval_value(m->v, n);
-    double sum = 0;
-    for (size_t s = 0; s < c->sets; s++)
-        sum += mean_in(m, c, s);
-    return sum / c->sets;
+    return curved_of(m, n) ? means_of(m, n) : eval_value(m->v, n);
 }
 
 double means_error(const struct means *m, node_id n)

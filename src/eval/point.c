@@ -25,9 +25,7 @@ const double *eval_gather(struct eval *v, node_id n)
     return x;
 }
 
-/* Where a probability was made as a complement, what it is the complement of is
- * more accurate than 1 - p. */
-static double complement_of(const struct eval *v, node_id n)
+double eval_complement(const struct eval *v, node_id n)
 {
     if (graph_at(v->g, n)->op == OP_COMPLEMENT)
         return v->value.at[graph_args(v->g, n)[0]];
@@ -48,7 +46,7 @@ static void gather_probabilities(struct eval *v, node_id n)
     eval_gather(v, n);
     double *q = ROOM(v, &v->q, count);
     for (size_t i = 0; i < count; i++)
-        q[i] = complement_of(v, args[i]);
+        q[i] = eval_complement(v, args[i]);
 }
 
 struct averaged eval_averaged(struct eval *v, node_id n)
@@ -90,15 +88,10 @@ double eval_node(struct eval *v, node_id n, size_t place)
     const struct graph_node *node = graph_at(v->g, n);
     switch (node->op) {
     case OP_CONST:
-    case OP_INPUT:
-        return node->constant;
-    case OP_DIAGRAM:
-        eval_diagram(v, n, v->results.at + place);
-        return (double)place;
-    case OP_PICK:
-        return v->results.at[(size_t)v->value.at[*graph_args(v->g, n)] + node->extra];
-    default:
-        return graph_node_point(v->g, n, eval_gather(v, n));
+    case OP_INPUT: return node->constant;
+    case OP_DIAGRAM: eval_diagram(v, n, v->results.at + place); return (double)place;
+    case OP_PICK: return v->results.at[(size_t)v->value.at[*graph_args(v->g, n)] + node->extra];
+    default: return graph_node_point(v->g, n, eval_gather(v, n));
     }
 }
 

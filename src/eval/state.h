@@ -21,13 +21,13 @@ struct eval {
     const struct graph *g;
     ARRAY(double) value;
     size_t done;
-    ARRAY(double) results;   /* of all DIAGRAM nodes */
-    ARRAY(double) weights;   /* backward: of results */
-    ARRAY(double) args;      /* scratch: values of arguments, p of a diagram */
-    ARRAY(double) q;         /* scratch: complements of p */
-    ARRAY(double) arg_back;  /* scratch: derivatives of arguments */
-    ARRAY(double) work;      /* scratch: probabilities of a diagram's nodes */
-    ARRAY(double) work_back; /* scratch: derivatives of them */
+    ARRAY(double) results;                /* of all DIAGRAM nodes */
+    ARRAY(double) weights;                /* backward: of results */
+    ARRAY(double) args;                   /* scratch: values of arguments, p of a diagram */
+    ARRAY(double) q;                      /* scratch: complements of p */
+    ARRAY(double) arg_back;               /* scratch: derivatives of arguments */
+    ARRAY(double) work;                   /* scratch: probabilities of a diagram's nodes */
+    ARRAY(double) work_back;              /* scratch: derivatives of them */
     ARRAY(const struct course *) courses; /* scratch: of a diagram over windows */
     ARRAY(struct course_values) course_values;
     ARRAY(struct course_values) course_back; /* scratch: derivatives of them */
@@ -36,8 +36,12 @@ struct eval {
 /* The arguments of node n as numbers, in v->args. */
 const double *eval_gather(struct eval *v, node_id n);
 
+/* 1 less the value of n. Where n was made as a complement, what it is the complement of is more
+ * accurate than 1 - p. */
+double eval_complement(const struct eval *v, node_id n);
+
 /* Makes an array of n, not cleared, in place of what was there. */
-#define ROOM(v, arr, want) \
+#define ROOM(v, arr, want)                                                                         \
     ((arr)->n = 0, array_reserve((v)->arena, (arr), (want)), (arr)->n = (want), (arr)->at)
 
 /* How many results a DIAGRAM has: roots, for each window. */

@@ -146,20 +146,34 @@ static const struct compiled *frequency_unit(const struct building *b, const cha
     return compiled_part(b, hazard, PART_FREQUENCY);
 }
 
-static node_id revealed(const struct element_building *m)
+/* How often hazards call on the element, taken at its mean: the rate at which demands reveal what
+ * has failed does not move with what is unknown of the demands. NODE_NONE for none. */
+static node_id called_on(const struct element_building *m)
 {
     struct figures *f = m->b->figures;
     const struct names *by = &m->x->revealed_by;
-    node_id *parts = NEW_ARRAY(f->arena, by->n + 1, node_id);
-    size_t n = 0;
-    if (m->x->exercised)
-        parts[n++] = compile_quantity(m->b, m->x->exercised);
+    node_id *parts = NEW_ARRAY(f->arena, by->n, node_id);
     for (size_t i = 0; i < by->n; i++)
-        parts[n++] = figure_at(f, frequency_unit(m->b, by->at[i])->main)->node;
-    if (n == 0)
+        parts[i] = figure_at(f, frequency_unit(m->b, by->at[i])->main)->node;
+    if (by->n == 0)
         return NODE_NONE;
-    node_id sum = n == 1 ? parts[0] : graph_op(f->graph, OP_SUM, n, parts);
-    const char *reads = n == 1 && m->x->exercised ? quantity_reads(f, m->x->exercised) : NULL;
+    node_id sum = by->n == 1 ? parts[0] : graph_op(f->graph, OP_SUM, by->n, parts);
+    return graph_op1(f->graph, OP_HELD, sum);
+}
+
+static node_id revealed(const struct element_building *m)
+{
+    struct figures *f = m->b->figures;
+    const struct quantity *often = m->x->exercised;
+    node_id called = called_on(m), exercised = NODE_NONE;
+    if (often)
+        exercised = compile_quantity(m->b, often);
+    if (!often && called == NODE_NONE)
+        return NODE_NONE;
+    node_id sum = !often ? called : exercised;
+    if (often && called != NODE_NONE)
+        sum = graph_op2(f->graph, OP_ADD, exercised, called);
+    const char *reads = called == NODE_NONE ? quantity_reads(f, often) : NULL;
     compiled_add(m->b, PROPERTY_REVEALED, NULL, NULL, sum, m->x->source, reads);
     return sum;
 }

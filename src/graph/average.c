@@ -4,52 +4,24 @@
  * A window is cut at the resets of the courses of variables that occur in the diagram. On a piece
  * everything is a sum of exponentials, which Gauss-Legendre integrates exactly to rounding, in
  * equal parts where the exponents ask for it. An exponential that has died away asks for nothing
- * any more. Courses that differ in `standing` alone are computed once.
+ * any more.
  *
- * Points are gathered in lanes, and the diagram is worked through for all lanes of a full set at a
- * time. Each result is a sum over its points in the order of time, whatever set they were in.
+ * Points are gathered in lanes, and courses and diagram are worked through for all lanes of a full
+ * set at a time. Each result is a sum over its points in the order of time, whatever set they were
+ * in. Where there will be a next time, pieces and sets are kept; a set counts again when its points
+ * are the same, and then only what has changed is computed anew.
  *
- * Owns a child arena for the time of one call. */
-#include "graph/average.h"
-
-#include "graph/average_order.h"
+ * Owns its arrays in the arena it was given. */
+#include "graph/average_parts.h"
 
 #include <assert.h>
 #include <math.h>
 #include <string.h>
 
-enum { LANES = 32, GROUP = 8 };
 static const double MOST_RESETS = 1e6, DEAD = 80;
 
-typedef double lanes[LANES];
-
-/* A variable that changes and occurs. */
-struct varying {
-    size_t variable, same; /* same: the first with equal changes, itself if there is none */
-    const struct course *course;
-    const double *x;
-    struct stretch now;
-};
-
-struct averaging {
-    const struct averaged *what;
-    struct arena *arena;
-    size_t n_varying;
-    struct varying *varying;
-    const struct course **courses; /* of varying */
-    struct reach reach;
-    lanes *p, *q;  /* by variable */
-    lanes *change; /* by varying: course_change */
-    lanes *work;   /* by node of the diagram */
-    size_t n;      /* lanes in use */
-    lanes weight;  /* of a point in the average of its window */
-    size_t window[LANES];
-    double *results;
-    const double *weights; /* slopes: of results; NULL: values only */
-    struct average_slopes *out;
-    lanes *slope; /* slopes: by varying and argument, of course_change */
-    lanes *back, *dp;
-};
+/* What is kept at the most: lanes of probabilities, and stretches of courses. */
+enum { MOST_LANES = 1 << 13, MOST_STRETCHES = 1 << 16 };
 
 /* ---- the pieces of a window ---- */
 
@@ -66,231 +38,222 @@ double average_piece_end(size_t n, const struct course *const *courses, struct w
     return end < w.to - grain ? end : w.to;
 }
 
-/* ---- the diagram in lanes ---- */
-
-static size_t groups(size_t n)
+/* Room for the stretches of a piece: for good, or until so many more pieces have come that none of
+ * them is in the set that is gathered. */
+static struct stretch *room_for_stretches(struct averages *v, bool stays)
 {
-    return (n + GROUP - 1) / GROUP;
+    if (stays)
+        return NEW_ARRAY(v->arena, v->n_varying, struct stretch);
+    struct stretch **room = &v->passing[v->n_passing++ % (LANES + 1)];
+    if (!*room)
+        *room = NEW_ARRAY(v->arena, v->n_varying, struct stretch);
+    return *room;
 }
+
+static struct piece make_piece(struct averages *v, size_t index, size_t window, double begin)
+{
+    struct window w = v->windows.at[window];
+    bool stays = v->keeps && index == v->pieces.n && (index + 1) * v->n_varying <= MOST_STRETCHES;
+    struct stretch *now = room_for_stretches(v, stays);
+    for (size_t i = 0; i < v->n_varying; i++)
+        now[i] = course_stretch(v->courses[i], begin + average_grain(w));
+    struct piece p = {window, begin, average_piece_end(v->n_varying, v->courses, w, begin), now};
+    if (stays)
+        *array_push(v->arena, &v->pieces) = p;
+    return p;
+}
+
+/* ---- the diagram in lanes ---- */
 
 static void mix_arms(double *restrict to, const double *restrict p, const double *restrict q,
                      const double *restrict high, const double *restrict low)
 {
-    for (int i = 0; i < GROUP; i++)
+    for (int i = 0; i < LANES; i++)
         to[i] = p[i] * high[i] + q[i] * low[i];
 }
 
-static void evaluate_lanes(struct averaging *v)
+static void evaluate_lanes(struct averages *v)
 {
-    const struct diagram *d = v->what->diagram;
-    size_t n = groups(v->n) * GROUP;
+    const struct diagram *d = v->diagram;
     for (size_t i = 0; i < d->n_nodes; i++) {
         const struct diagram_node *node = &d->nodes[i];
-        const double *p = v->p[node->variable], *q = v->q[node->variable];
-        const double *high = v->work[node->high], *low = v->work[node->low];
-        double *to = v->work[i + 2];
-        for (size_t k = 0; k < n; k += GROUP)
-            mix_arms(to + k, p + k, q + k, high + k, low + k);
+        mix_arms(v->work[i + 2], v->p[node->variable], v->q[node->variable], v->work[node->high],
+                 v->work[node->low]);
     }
 }
 
-static void add_results(struct averaging *v)
+static void add_results(struct averages *v, void *ctx)
 {
-    const struct diagram *d = v->what->diagram;
-    for (size_t i = 0; i < v->n; i++) {
-        double *results = v->results + v->window[i] * d->n_roots;
+    double *to = ctx;
+    const struct diagram *d = v->diagram;
+    for (size_t i = 0; i < v->points.n; i++) {
+        double *results = to + v->points.window[i] * d->n_roots;
         for (size_t k = 0; k < d->n_roots; k++)
-            results[k] += v->weight[i] * v->work[d->roots[k]][i];
+            results[k] += v->points.weight[i] * v->work[d->roots[k]][i];
     }
 }
 
-/* ---- slopes ---- */
+/* ---- sets of points ---- */
 
-static void set_back(struct averaging *v)
+static double positive(double x)
 {
-    const struct diagram *d = v->what->diagram;
-    memset(v->back, 0, (d->n_nodes + 2) * sizeof *v->back);
-    memset(v->dp, 0, v->what->n * sizeof *v->dp);
-    for (size_t k = 0; k < d->n_roots; k++)
-        for (size_t i = 0; i < v->n; i++)
-            v->back[d->roots[k]][i] += v->weight[i] * v->weights[v->window[i] * d->n_roots + k];
+    return x > 0 ? x : 0;
 }
 
-static void back_lanes(struct averaging *v)
+static double greater(double x, double y)
 {
-    const struct diagram *d = v->what->diagram;
-    for (size_t i = d->n_nodes; i-- > 0;) {
-        const struct diagram_node *node = &d->nodes[i];
-        const double *p = v->p[node->variable], *q = v->q[node->variable];
-        const double *high = v->work[node->high], *low = v->work[node->low];
-        const double *w = v->back[i + 2];
-        double *dp = v->dp[node->variable];
-        double *back_high = v->back[node->high], *back_low = v->back[node->low];
-        for (size_t k = 0; k < v->n; k++) {
-            dp[k] += w[k] * (high[k] - low[k]);
-            back_high[k] += w[k] * p[k];
-            back_low[k] += w[k] * q[k];
-        }
+    return x > y ? x : y;
+}
+
+void averages_moments(const struct averages *v, size_t i, struct moments *at)
+{
+    const struct gathered *points = &v->points;
+    double born = v->varying[i].course->born;
+    *at = (struct moments){0};
+    for (size_t k = 0; k < points->n; k++) {
+        const struct stretch *now = &points->now[k][i];
+        at->since[k] = positive(points->t[k] - now->origin);
+        at->age[k] = positive(points->t[k] - born);
+        at->left[k] = !now->fresh;
+        at->latest_since = greater(at->latest_since, at->since[k]);
+        at->latest_age = greater(at->latest_age, at->age[k]);
     }
 }
 
-static double dot(size_t n, const double *x, const double *y)
+static void make_set(struct averages *v, struct kept_set *s)
 {
-    double sum = 0;
-    for (size_t i = 0; i < n; i++)
-        sum += x[i] * y[i];
-    return sum;
+    s->p = NEW_ARRAY(v->arena, v->n_varying, lanes);
+    s->q = NEW_ARRAY(v->arena, v->n_varying, lanes);
+    s->at = NEW_ARRAY(v->arena, v->n_varying, struct moments);
+    s->edition = NEW_ARRAY(v->arena, v->n_varying, uint64_t);
 }
 
-static void add_course_slopes(struct averaging *v, const struct varying *one)
+static struct kept_set *set_of(struct averages *v)
 {
-    double *by = v->out->by[one->variable], standing = one->x[COURSE_STANDING];
-    const double *dp = v->dp[one->variable];
-    for (size_t i = 0; i < v->n; i++)
-        by[COURSE_STANDING] += dp[i] * (1 - v->change[one->same][i]);
-    for (int k = COURSE_RATE; k < COURSE_ARGS; k++)
-        by[k] += (1 - standing) * dot(v->n, dp, v->slope[one->same * COURSE_ARGS + (size_t)k]);
-}
-
-static void add_slopes(struct averaging *v)
-{
-    for (size_t i = 0; i < v->what->diagram->n_variables; i++) {
-        for (size_t k = 0; k < v->n && v->out->gain; k++)
-            v->out->gain[i] += v->dp[i][k];
-        if (v->out->share)
-            v->out->share[i] += dot(v->n, v->dp[i], v->p[i]);
+    if (v->set < v->sets.n)
+        return &v->sets.at[v->set];
+    if (v->keeps && (v->set + 1) * v->n_varying <= MOST_LANES) {
+        make_set(v, array_push(v->arena, &v->sets));
+        return array_last(&v->sets);
     }
-    for (size_t i = 0; i < v->n_varying && v->out->by; i++)
-        add_course_slopes(v, &v->varying[i]);
+    v->passing_set.n = 0;
+    return &v->passing_set;
 }
 
-/* ---- gathering points ---- */
-
-static void flush(struct averaging *v)
+static bool has_points(const struct kept_set *s, const struct gathered *points)
 {
-    if (v->n == 0)
-        return;
-    evaluate_lanes(v);
-    if (v->weights) {
-        set_back(v);
-        back_lanes(v);
-        add_slopes(v);
-    } else {
-        add_results(v);
-    }
-    v->n = 0;
+    size_t size = points->n * sizeof *points->t;
+    return s->n == points->n && memcmp(s->t, points->t, size) == 0 &&
+           memcmp(s->begin, points->begin, size) == 0;
 }
 
-static void change_at(struct averaging *v, size_t index, size_t lane, double t)
+/* The probabilities of varying variables at the points, of which those that stay are there where
+ * the set was met before. */
+static void place_courses(struct averages *v)
 {
-    const struct varying *one = &v->varying[index];
-    double since = fmax(t - one->now.origin, 0), age = fmax(t - one->course->born, 0);
-    if (!v->weights) {
-        v->change[index][lane] = course_change(one->x, one->now.fresh, since, age);
-        return;
-    }
-    double slope[COURSE_ARGS];
-    v->change[index][lane] = course_change_slopes(one->x, one->now.fresh, since, age, slope);
-    for (size_t k = 0; k < COURSE_ARGS; k++)
-        v->slope[index * COURSE_ARGS + k][lane] = slope[k];
-}
-
-static void add_point(struct averaging *v, size_t window, double t, double weight)
-{
-    size_t lane = v->n++;
-    v->weight[lane] = weight;
-    v->window[lane] = window;
+    struct kept_set *s = set_of(v);
+    bool known = has_points(s, &v->points);
+    s->n = v->points.n;
+    memcpy(s->t, v->points.t, sizeof s->t);
+    memcpy(s->begin, v->points.begin, sizeof s->begin);
     for (size_t i = 0; i < v->n_varying; i++) {
         const struct varying *one = &v->varying[i];
-        if (one->same == i)
-            change_at(v, i, lane, t);
-        double change = v->change[one->same][lane], standing = one->x[COURSE_STANDING];
-        v->p[one->variable][lane] = standing + change * (1 - standing);
-        v->q[one->variable][lane] = (1 - change) * (1 - standing);
+        v->p[one->variable] = s->p[i];
+        v->q[one->variable] = s->q[i];
+        if (known && s->edition[i] == one->edition)
+            continue;
+        s->edition[i] = one->edition;
+        if (!known)
+            averages_moments(v, i, &s->at[i]);
+        course_lanes(&one->versions, &s->at[i], s->p[i], s->q[i]);
     }
-    if (v->n == LANES)
+}
+
+static void flush(struct averages *v)
+{
+    if (v->points.n == 0)
+        return;
+    place_courses(v);
+    evaluate_lanes(v);
+    v->take(v, v->ctx);
+    v->points.n = 0;
+    v->set++;
+}
+
+static void add_point(struct averages *v, const struct piece *p, double t, double weight)
+{
+    struct gathered *points = &v->points;
+    size_t k = points->n++;
+    points->t[k] = t;
+    points->begin[k] = p->begin;
+    points->weight[k] = weight;
+    points->window[k] = p->window;
+    points->now[k] = p->now;
+    if (points->n == LANES)
         flush(v);
 }
 
 /* ---- parts of a piece ---- */
 
-/* The sum of the exponents that are still alive at time t. */
-static double exponents(const struct averaging *v, double t)
+/* The sums of the exponents that are still alive at time t. */
+static void exponents(const struct averages *v, const struct stretch *now, double t,
+                      double sum[PACES])
 {
-    double sum = 0;
+    for (int k = 0; k < PACES; k++)
+        sum[k] = 0;
     for (size_t i = 0; i < v->n_varying; i++) {
-        const struct varying *one = &v->varying[i];
-        double reset = one->x[COURSE_RATE] + one->x[COURSE_ENDING];
-        double unreset = one->x[COURSE_UNRESET] + one->x[COURSE_ENDING];
-        if (reset * (t - one->now.origin) < DEAD)
-            sum += reset;
-        if (one->x[COURSE_UNRESET] > 0 && unreset * (t - one->course->born) < DEAD)
-            sum += unreset;
+        const struct pace *pace = &v->varying[i].pace;
+        bool resets = pace->slowest_reset * (t - now[i].origin) < DEAD;
+        bool ages =
+            pace->unreset[0] > 0 && pace->slowest_unreset * (t - v->varying[i].course->born) < DEAD;
+        for (int k = 0; k < PACES; k++)
+            sum[k] += (resets ? pace->reset[k] : 0) + (ages ? pace->unreset[k] : 0);
     }
-    return sum;
 }
 
-static void add_piece(struct averaging *v, size_t window, double begin, double end)
+static void add_piece(struct averages *v, const struct piece *p)
 {
-    struct window w = v->what->windows.at[window];
-    for (double at = begin, next; at < end; at = next) {
-        double parts = 1;
-        const struct legendre_rule *rule =
-            average_rule(&v->reach, exponents(v, at) * (end - at), &parts);
-        next = parts > 1 ? at + (end - at) / parts : end;
-        next = next > at && next < end ? next : end;
+    struct window w = v->windows.at[p->window];
+    for (double at = p->begin, next; at < p->end; at = next) {
+        double parts = 1, sum[PACES];
+        exponents(v, p->now, at, sum);
+        for (int k = 0; k < PACES; k++)
+            sum[k] *= p->end - at;
+        const struct legendre_rule *rule = average_rule(&v->reach, sum, &parts);
+        next = parts > 1 ? at + (p->end - at) / parts : p->end;
+        next = next > at && next < p->end ? next : p->end;
         for (size_t i = 0; i < rule->n; i++)
-            add_point(v, window, at + (next - at) * rule->nodes[i].at,
+            add_point(v, p, at + (next - at) * rule->nodes[i].at,
                       rule->nodes[i].weight * (next - at) / (w.to - w.from));
     }
 }
 
-static void add_window(struct averaging *v, size_t window)
+static void add_windows(struct averages *v)
 {
-    struct window w = v->what->windows.at[window];
-    if (v->n_varying == 0) {
-        add_point(v, window, w.from, 1);
-        return;
+    size_t index = 0;
+    v->set = 0;
+    for (size_t k = 0; k < v->windows.n; k++) {
+        struct window w = v->windows.at[k];
+        struct piece p = {k, w.from, w.from, NULL};
+        if (v->n_varying == 0)
+            add_point(v, &p, w.from, 1);
+        for (; v->n_varying && p.end < w.to; index++) {
+            p = index < v->pieces.n ? v->pieces.at[index] : make_piece(v, index, k, p.end);
+            add_piece(v, &p);
+        }
     }
-    for (double at = w.from, end; at < w.to; at = end) {
-        end = average_piece_end(v->n_varying, v->courses, w, at);
-        for (size_t i = 0; i < v->n_varying; i++)
-            v->varying[i].now = course_stretch(v->courses[i], at + average_grain(w));
-        add_piece(v, window, at, end);
-    }
+    flush(v);
 }
 
-/* ---- beginning ---- */
+/* ---- values ---- */
 
-static bool has_equal_change(const struct varying *a, const struct varying *b)
-{
-    return a->course == b->course && memcmp(a->x + COURSE_RATE, b->x + COURSE_RATE,
-                                            (COURSE_ARGS - COURSE_RATE) * sizeof *a->x) == 0;
-}
+static const double certainly = 1;
 
-static void add_varying(struct averaging *v, size_t variable)
+static struct mixture versions_of(const struct averaged *what, size_t i)
 {
-    size_t at = v->n_varying++;
-    struct varying *one = &v->varying[at];
-    v->courses[at] = v->what->course[variable];
-    *one = (struct varying){variable, at, v->courses[at], v->what->x[variable], {0}};
-    for (size_t i = 0; i < at && one->same == at; i++)
-        if (has_equal_change(&v->varying[i], one))
-            one->same = v->varying[i].same;
-}
-
-/* In the order of variables, those that occur. */
-static void find_varying(struct averaging *v)
-{
-    const struct diagram *d = v->what->diagram;
-    bool *occurs = NEW_ARRAY(v->arena, v->what->n, bool);
-    for (size_t i = 0; i < d->n_nodes; i++)
-        occurs[d->nodes[i].variable] = true;
-    v->varying = NEW_ARRAY(v->arena, v->what->n, struct varying);
-    v->courses = NEW_ARRAY(v->arena, v->what->n, const struct course *);
-    for (size_t i = 0; i < d->n_variables; i++)
-        if (occurs[i] && v->what->course[i])
-            add_varying(v, i);
+    if (what->mixture && what->mixture[i].n)
+        return what->mixture[i];
+    return (struct mixture){1, &certainly, &what->x[i]};
 }
 
 static void fill(double *lane, double x)
@@ -299,83 +262,138 @@ static void fill(double *lane, double x)
         lane[i] = x;
 }
 
-static void make_room(struct averaging *v)
+static void take_still(struct averages *v, size_t i)
 {
-    const struct averaged *what = v->what;
-    size_t n_nodes = what->diagram->n_nodes + 2;
-    v->p = NEW_ARRAY(v->arena, what->n, lanes);
-    v->q = NEW_ARRAY(v->arena, what->n, lanes);
-    v->change = NEW_ARRAY(v->arena, v->n_varying, lanes);
-    v->work = NEW_ARRAY(v->arena, n_nodes, lanes);
-    fill(v->work[1], 1);
-    for (size_t i = 0; i < what->n; i++)
-        if (!what->course[i]) {
-            fill(v->p[i], what->p[i]);
-            fill(v->q[i], what->q[i]);
-        }
-    if (v->weights) {
-        v->back = NEW_ARRAY(v->arena, n_nodes, lanes);
-        v->dp = NEW_ARRAY(v->arena, what->n, lanes);
-        v->slope = NEW_ARRAY(v->arena, v->n_varying * COURSE_ARGS, lanes);
-    }
+    fill(v->still_p[i], v->what->p[i]);
+    fill(v->still_q[i], v->what->q[i]);
+    v->extremes[i] = average_still(v->what->p[i], v->what->q[i]);
 }
 
 /* Whether it can be computed: finite, and in not too many pieces. */
-static bool is_sound(const struct averaging *v)
+static bool is_sound(const struct averages *v, const struct varying *one)
 {
-    double t = 0;
-    for (size_t k = 0; k < v->what->windows.n; k++)
-        t = fmax(t, v->what->windows.at[k].to - v->what->windows.at[k].from);
-    for (size_t i = 0; i < v->n_varying; i++) {
-        const struct varying *one = &v->varying[i];
-        bool is_reset = one->course->first < INFINITY;
-        if (is_reset && !(t / one->course->every <= MOST_RESETS))
-            return false;
-        if (!isfinite(one->x[COURSE_STANDING]))
+    double longest = 0;
+    for (size_t k = 0; k < v->windows.n; k++)
+        longest = fmax(longest, v->windows.at[k].to - v->windows.at[k].from);
+    if (one->course->first < INFINITY && !(longest / one->course->every <= MOST_RESETS))
+        return false;
+    for (size_t i = 0; i < one->versions.n; i++) {
+        const double *x = one->versions.x[i];
+        if (!isfinite(x[COURSE_STANDING]))
             return false;
         for (int k = COURSE_RATE; k < COURSE_ARGS; k++)
-            if (!(one->x[k] >= 0 && isfinite(one->x[k])))
+            if (!(x[k] >= 0 && isfinite(x[k])))
                 return false;
     }
     return true;
 }
 
-static bool prepare(struct averaging *v, struct arena *a)
+static bool take_varying(struct averages *v, struct varying *one, bool changed)
 {
-    v->arena = arena_child(a);
-    find_varying(v);
-    if (!is_sound(v))
+    one->versions = versions_of(v->what, one->variable);
+    if (!changed)
+        return one->sound;
+    one->edition++;
+    one->sound = is_sound(v, one);
+    if (!one->sound)
         return false;
-    make_room(v);
-    v->reach = average_reach(v->arena, v->what);
+    one->pace = average_pace(&one->versions);
+    v->extremes[one->variable] = average_extreme(one->course, &one->versions, &v->windows);
     return true;
 }
 
-static void add_windows(struct averaging *v)
+bool averages_pass(struct averages *v, const struct averaged *what, const bool *changed,
+                   void (*take)(struct averages *v, void *ctx), void *ctx)
 {
-    for (size_t k = 0; k < v->what->windows.n; k++)
-        add_window(v, k);
-    flush(v);
+    bool sound = true;
+    v->what = what;
+    v->take = take;
+    v->ctx = ctx;
+    for (size_t i = 0; i < v->diagram->n_variables; i++)
+        if (v->occurs[i] && !what->course[i] && (!changed || changed[i]))
+            take_still(v, i);
+    for (size_t i = 0; i < v->n_varying; i++) {
+        bool is_new = !changed || changed[v->varying[i].variable];
+        sound = take_varying(v, &v->varying[i], is_new) && sound;
+    }
+    if (!sound)
+        return false;
+    v->reach = average_reach(v->diagram, v->extremes, v->order);
+    add_windows(v);
+    return true;
+}
+
+/* ---- beginning ---- */
+
+/* In the order of variables, those that occur. */
+static void find_varying(struct averages *v, const struct averaged *what)
+{
+    const struct diagram *d = v->diagram;
+    v->occurs = NEW_ARRAY(v->arena, d->n_variables, bool);
+    v->varying = NEW_ARRAY(v->arena, d->n_variables, struct varying);
+    v->courses = NEW_ARRAY(v->arena, d->n_variables, const struct course *);
+    for (size_t i = 0; i < d->n_nodes; i++)
+        v->occurs[d->nodes[i].variable] = true;
+    for (size_t i = 0; i < d->n_variables; i++) {
+        if (!v->occurs[i] || !what->course[i])
+            continue;
+        v->courses[v->n_varying] = what->course[i];
+        v->varying[v->n_varying++] = (struct varying){.variable = i, .course = what->course[i]};
+    }
+}
+
+static void make_room(struct averages *v)
+{
+    size_t n = v->diagram->n_variables, n_nodes = v->diagram->n_nodes + 2;
+    v->extremes = NEW_ARRAY(v->arena, n, struct extreme);
+    v->order = arena_array(v->arena, n_nodes, sizeof *v->order);
+    v->still_p = NEW_ARRAY(v->arena, n, lanes);
+    v->still_q = NEW_ARRAY(v->arena, n, lanes);
+    v->p = NEW_ARRAY(v->arena, n, const double *);
+    v->q = NEW_ARRAY(v->arena, n, const double *);
+    v->work = NEW_ARRAY(v->arena, n_nodes, lanes);
+    fill(v->work[1], 1);
+    for (size_t i = 0; i < n; i++)
+        v->p[i] = v->still_p[i], v->q[i] = v->still_q[i];
+    make_set(v, &v->passing_set);
+}
+
+static struct averages *begin(struct arena *a, const struct averaged *what, bool keeps)
+{
+    struct averages *v = NEW(a, struct averages);
+    v->arena = a;
+    v->diagram = what->diagram;
+    v->windows = what->windows;
+    v->keeps = keeps;
+    find_varying(v, what);
+    make_room(v);
+    return v;
+}
+
+struct averages *averages_new(struct arena *a, const struct averaged *what)
+{
+    return begin(a, what, true);
+}
+
+struct averages *averages_once(struct arena *a, const struct averaged *what)
+{
+    return begin(a, what, false);
+}
+
+void averages_take(struct averages *v, const struct averaged *what, const bool *changed,
+                   double *results)
+{
+    size_t n_results = what->windows.n * what->diagram->n_roots;
+    for (size_t k = 0; k < n_results; k++)
+        results[k] = 0;
+    bool sound = averages_pass(v, what, changed, add_results, results);
+    for (size_t k = 0; k < n_results; k++) /* weights and probabilities are rounded */
+        results[k] = !sound ? NAN : results[k] > 1 ? 1 : results[k];
 }
 
 void average_values(struct arena *a, const struct averaged *what, double *results)
 {
-    struct averaging v = {.what = what, .results = results};
-    bool sound = prepare(&v, a);
-    for (size_t i = 0; i < what->windows.n * what->diagram->n_roots; i++)
-        results[i] = sound ? 0 : NAN;
-    if (sound)
-        add_windows(&v);
-    arena_free(v.arena);
-}
-
-void average_slopes(struct arena *a, const struct averaged *what, const double *weight,
-                    struct average_slopes *out)
-{
-    struct averaging v = {.what = what, .weights = weight, .out = out};
-    bool sound = prepare(&v, a);
-    assert(sound);
-    (void)sound;
-    add_windows(&v);
-    arena_free(v.arena);
+    struct arena *scratch = arena_child(a);
+    averages_take(averages_once(scratch, what), what, NULL, results);
+    arena_free(scratch);
 }

@@ -5,6 +5,7 @@
 #define GRAPH_AVERAGE_H
 
 #include "graph/course.h"
+#include "graph/course_lanes.h"
 #include "graph/diagram.h"
 
 struct averaged {
@@ -13,6 +14,9 @@ struct averaged {
     const double *p, *q;                /* of true and false, for what does not change */
     const struct course *const *course; /* NULL: does not change */
     const double (*x)[COURSE_ARGS];     /* the arguments of each course */
+    /* NULL, or of each variable: versions of the course's arguments, in place of x. At each time
+     * its probability is the mean over them. n = 0: x. */
+    const struct mixture *mixture;
     struct windows windows;
 };
 
@@ -21,7 +25,16 @@ struct averaged {
  * back. */
 void average_values(struct arena *a, const struct averaged *what, double *results);
 
-/* With R = sum of weight[r] * results[r]; all are added to, and may be NULL.
+/* The same again and again, with other values of the variables i where changed[i] (all of them the
+ * first time, and where `changed` is NULL); what the others ask for is kept, as far as there is
+ * room. The diagram, the courses and the windows are those of the first time. The same bytes as
+ * those of average_values. Lives in `a`. */
+struct averages;
+struct averages *averages_new(struct arena *a, const struct averaged *what);
+void averages_take(struct averages *v, const struct averaged *what, const bool *changed,
+                   double *results);
+
+/* With R = sum of weight[r] * results[r]; all are added to, and may be NULL. No mixtures.
  * gain[i] = R(i true at all times) - R(i false at all times) = dR/dp for what does not change;
  * share[i] = R - R(i false at all times); by[i] = dR/dx[i], for courses only. */
 struct average_slopes {

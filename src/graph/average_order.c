@@ -18,12 +18,6 @@
 
 static const double COARSE = 1e-5, FINE = 1e-12;
 
-/* How likely a variable is at the most, and on which of its arms something grows from 0. */
-struct extreme {
-    double p, q;
-    bool grows_true, grows_false;
-};
-
 static double oldest(const struct course *c, const struct windows *w)
 {
     double last = 0, first = INFINITY;
@@ -35,24 +29,97 @@ static double oldest(const struct course *c, const struct windows *w)
     return fmin(last, first < c->first ? fmax(before, c->every) : c->every);
 }
 
-static struct extreme extreme_of(const struct averaged *what, size_t i)
+struct extreme average_still(double p, double q)
 {
-    const struct course *c = what->course[i];
-    if (!c)
-        return (struct extreme){what->p[i], what->q[i], false, false};
-    const double *x = what->x[i];
-    double age = 0;
-    for (size_t k = 0; k < what->windows.n; k++)
-        age = fmax(age, what->windows.at[k].to - c->born);
-    double young = course_change(x, c->fresh, 0, age), left = course_change(x, false, 0, age);
-    double old = course_change(x, c->fresh, oldest(c, &what->windows), age);
-    bool falls = x[COURSE_LEFT] * (x[COURSE_RATE] + x[COURSE_ENDING]) > x[COURSE_RATE];
-    double most = fmax(fmax(young, left), old), least = fmin(left, old);
-    return (struct extreme){.p = x[COURSE_STANDING] + most * (1 - x[COURSE_STANDING]),
-                            .q = (1 - x[COURSE_STANDING]) * (1 - (falls ? least : 0)),
-                            .grows_true = !falls || c->fresh || x[COURSE_UNRESET] > 0,
-                            .grows_false = falls};
+    return (struct extreme){p, q, false, false};
 }
+
+/* Whether something falls from `left`, something is never reset, and the mean of not standing. */
+struct habits {
+    bool falls, ages;
+    double rest;
+};
+
+static struct habits habits_of(const struct mixture *m)
+{
+    struct habits h = {0};
+    for (size_t i = 0; i < m->n; i++) {
+        const double *x = m->x[i];
+        h.falls = h.falls || x[COURSE_LEFT] * (x[COURSE_RATE] + x[COURSE_ENDING]) > x[COURSE_RATE];
+        h.ages = h.ages || x[COURSE_UNRESET] > 0;
+        h.rest += m->weight[i] * (1 - x[COURSE_STANDING]);
+    }
+    return h;
+}
+
+/* Right after the beginning, right after a reset, and just before the next. */
+struct extreme average_extreme(const struct course *c, const struct mixture *m,
+                               const struct windows *w)
+{
+    enum { YOUNG, LEFT, OLD };
+    struct moments at = {.left = {!c->fresh, 1, !c->fresh}};
+    struct habits h = habits_of(m);
+    lanes p, q;
+    double age = 0;
+    for (size_t k = 0; k < w->n; k++)
+        age = fmax(age, w->at[k].to - c->born);
+    at.since[OLD] = at.latest_since = oldest(c, w);
+    at.latest_age = age;
+    for (int i = 0; i < LANES; i++)
+        at.age[i] = age;
+    course_lanes(m, &at, p, q);
+    return (struct extreme){.p = fmax(fmax(p[YOUNG], p[LEFT]), p[OLD]),
+                            .q = h.falls ? fmax(q[LEFT], q[OLD]) : h.rest,
+                            .grows_true = !h.falls || c->fresh || h.ages,
+                            .grows_false = h.falls};
+}
+
+/* ---- how fast ---- */
+
+/* The mean of argument k, to say how much of it is of a version. */
+static double mean_of(const struct mixture *m, int k)
+{
+    double mean = 0;
+    for (size_t i = 0; i < m->n; i++)
+        mean += m->weight[i] * m->x[i][k];
+    return mean;
+}
+
+/* What part of the whole a version has, at the most, from one of its arguments. */
+static double part_of(double weight, double x, double mean)
+{
+    return mean > 0 ? fmin(fmax(weight, weight * x / mean), 1) : weight;
+}
+
+/* An exponent y that has the part w of the whole counts like y w^(1 / 2 m) for m nodes, whose error
+ * goes with the power 2 m. */
+static void meet(double y, double w, double most[PACES])
+{
+    double root = sqrt(sqrt(sqrt(w)));
+    for (int i = 0; i < PACES; i++, root = sqrt(root))
+        most[i] = fmax(most[i], y * root);
+}
+
+struct pace average_pace(const struct mixture *m)
+{
+    struct pace p = {.slowest_reset = INFINITY, .slowest_unreset = INFINITY};
+    double rate = mean_of(m, COURSE_RATE), unreset = mean_of(m, COURSE_UNRESET);
+    double left = mean_of(m, COURSE_LEFT);
+    for (size_t i = 0; i < m->n; i++) {
+        const double *x = m->x[i];
+        double w = m->weight[i];
+        double h = x[COURSE_RATE] + x[COURSE_ENDING], u = x[COURSE_UNRESET] + x[COURSE_ENDING];
+        meet(h, fmax(part_of(w, x[COURSE_RATE], rate), part_of(w, x[COURSE_LEFT], left)), p.reset);
+        p.slowest_reset = fmin(p.slowest_reset, h);
+        if (unreset == 0)
+            continue;
+        meet(u, part_of(w, x[COURSE_UNRESET], unreset), p.unreset);
+        p.slowest_unreset = fmin(p.slowest_unreset, u);
+    }
+    return p;
+}
+
+/* ---- how many at a time ---- */
 
 /* Adds p times the parts of an arm, one order higher where it grows. */
 static void add_arm(double *to, const double *arm, double p, bool grows)
@@ -62,13 +129,10 @@ static void add_arm(double *to, const double *arm, double p, bool grows)
         to[grows && j < LAST ? j + 1 : j] += p * arm[j];
 }
 
-static double (*node_orders(struct arena *scratch, const struct averaged *what))[LEGENDRE_ORDERS]
+static void node_orders(const struct diagram *d, const struct extreme *extremes,
+                        double (*part)[LEGENDRE_ORDERS])
 {
-    const struct diagram *d = what->diagram;
-    double(*part)[LEGENDRE_ORDERS] = arena_array(scratch, d->n_nodes + 2, sizeof *part);
-    struct extreme *extremes = NEW_ARRAY(scratch, what->n, struct extreme);
-    for (size_t i = 0; i < what->n; i++)
-        extremes[i] = extreme_of(what, i);
+    memset(part, 0, (d->n_nodes + 2) * sizeof *part);
     part[1][0] = 1;
     for (size_t i = 0; i < d->n_nodes; i++) {
         const struct diagram_node *n = &d->nodes[i];
@@ -76,7 +140,6 @@ static double (*node_orders(struct arena *scratch, const struct averaged *what))
         add_arm(part[i + 2], part[n->high], e->p, e->grows_true);
         add_arm(part[i + 2], part[n->low], e->q, e->grows_false);
     }
-    return part;
 }
 
 /* The greatest order whose part of the whole is above a threshold. */
@@ -92,10 +155,10 @@ static int greatest_order(const double *part, double threshold)
     return greatest;
 }
 
-struct reach average_reach(struct arena *scratch, const struct averaged *what)
+struct reach average_reach(const struct diagram *d, const struct extreme *extremes,
+                           double (*part)[LEGENDRE_ORDERS])
 {
-    const struct diagram *d = what->diagram;
-    double(*part)[LEGENDRE_ORDERS] = node_orders(scratch, what);
+    node_orders(d, extremes, part);
     int coarse = 0, fine = 0;
     for (size_t k = 0; k < d->n_roots; k++) {
         int c = greatest_order(part[d->roots[k]], COARSE);
@@ -109,16 +172,23 @@ struct reach average_reach(struct arena *scratch, const struct averaged *what)
     return r;
 }
 
-const struct legendre_rule *average_rule(const struct reach *r, double x, double *parts)
+static int pace_of(const struct legendre_rule *rule)
+{
+    return (rule->n > 4) + (rule->n > 8);
+}
+
+const struct legendre_rule *average_rule(const struct reach *r, const double x[PACES],
+                                         double *parts)
 {
     double fewest = INFINITY;
     const struct legendre_rule *best = NULL;
     for (int i = 0; i < LEGENDRE_RULES; i++) {
+        const struct legendre_rule *rule = &legendre_rules[i];
         if (r->of[i] == 0)
             continue;
-        double n = fmax(1, ceil(x / r->of[i])), points = n * (double)legendre_rules[i].n;
+        double n = fmax(1, ceil(x[pace_of(rule)] / r->of[i])), points = n * (double)rule->n;
         if (points < fewest) {
-            best = &legendre_rules[i];
+            best = rule;
             fewest = points;
             *parts = n;
         }

@@ -153,6 +153,7 @@ static enum manner manner_of(const struct degrees *d, const struct graph *g, nod
     case DEGREE_POWER: return graph_at(g, graph_args(g, n)[1])->constant == 1 ? PLAIN : BENT;
     case DEGREE_CHOICE: return i == 0 ? BENT : PLAIN;
     case DEGREE_COURSE: return i == 0 || i == 3 ? PLAIN : BENT;
+    case DEGREE_HELD: return IGNORED;
     case DEGREE_CURVED:
     case DEGREE_MISSING: break;
     }

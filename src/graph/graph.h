@@ -30,7 +30,8 @@ typedef uint32_t node_id;
  * without one of them.
  *
  * SUM of nothing is the number 0. MIN and MAX of a NaN are NaN, and -0 is below +0.
- * LOOKUP is v of the last b that x reaches (x >= b), and v1 below b1; the b rise. */
+ * LOOKUP is v of the last b that x reaches (x >= b), and v1 below b1; the b rise.
+ * HELD is x, and certain: what reads it meets the mean of x, however x varies. */
 #define GRAPH_OPS(X)                                                                   \
     X(CONST, "const", 0, 0, "", 9)      /* a number                                */  \
     X(INPUT, "input", 0, 0, "", 9)      /* an uncertain input, by its mean         */  \
@@ -51,6 +52,7 @@ typedef uint32_t node_id;
     X(LOOKUP, "lookup", 3, 255, "lookup", 0) /* x, b1, v1, b2, v2, ...; b CONST     */ \
     X(ANNUITY, "annuity", 3, 3, "annuity", 0) /* rate, from, to: see graph_annuity  */ \
     X(EITHER, "either", 1, 255, "either", 0) /* 1 - (1 - x)(1 - y)...: independent events */ \
+    X(HELD, "held", 1, 1, "at-mean", 0) /* x, but its mean where means are taken     */ \
     X(YEARS, "years", 2, 255, "years", 0) /* rate, values: see graph_years           */ \
     X(COURSE, "course", 5, 5, "course", 0) /* a probability over time: graph_course   */ \
     X(DIAGRAM, "diagram", 0, 255, "diagram", 0) /* a decision diagram: many results  */\

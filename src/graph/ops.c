@@ -90,6 +90,18 @@ static double negate_point(size_t n, const double *x)
     return -x[0];
 }
 
+static double held_point(size_t n, const double *x)
+{
+    (void)n;
+    return x[0];
+}
+
+static void held_backward(size_t n, const double *x, double y, double w, double *back)
+{
+    (void)n, (void)x, (void)y;
+    back[0] += w;
+}
+
 static double complement_point(size_t n, const double *x)
 {
     (void)n;
@@ -403,6 +415,7 @@ static const struct op_rule rules[OP_COUNT] = {
     ROW(LOOKUP,     lookup_point,     lookup_backward,   unit_lookup,   lookup,     CHOICE),
     ROW(ANNUITY,    annuity_point,    annuity_backward,  unit_number,   annuity,    CURVED),
     ROW(EITHER,     either_point,     either_backward,   unit_number,   either,     PRODUCT),
+    ROW(HELD,       held_point,       held_backward,     unit_same,     keep,       HELD),
     ROW(YEARS,      NULL,             NULL,              unit_years,    years,      CHOICE),
     ROW(COURSE,     NULL,             NULL,              unit_course,   course,     COURSE),
     ROW(DIAGRAM,    NULL,             NULL,              unit_number,   diagram,    PRODUCT),

@@ -28,6 +28,7 @@ enum degree_rule {
     DEGREE_POWER,    /* exponent 1 keeps, another is curved */
     DEGREE_CHOICE,   /* curved in the first, linear in the others */
     DEGREE_COURSE,   /* linear in the first and the fourth, curved in the others */
+    DEGREE_HELD,     /* 0, whatever is uncertain below */
     DEGREE_CURVED    /* 2 when anything is uncertain */
 };
 

@@ -347,7 +347,7 @@ static const enum graph_op drawn[] = {
     OP_ADD,   OP_SUBTRACT,   OP_MULTIPLY, OP_DIVIDE,  OP_RATIO, OP_NEGATE,
     OP_POWER, OP_COMPLEMENT, OP_SUM,      OP_MIN,     OP_MAX,   OP_EXP,
     OP_LOG,   OP_SQRT,       OP_LOOKUP,   OP_ANNUITY, OP_PICK,  OP_PICK,
-    OP_EITHER, OP_YEARS,     OP_COURSE,   OP_COURSE,
+    OP_EITHER, OP_YEARS,     OP_COURSE,   OP_COURSE,  OP_HELD,
 };
 
 static void draw_step(struct random *r, struct recipe *recipe, struct built *b)

@@ -85,6 +85,7 @@ static const struct example examples[] = {
     {OP_RATIO, 2, {2.385, 0.04}, 59.625},
     {OP_RATIO, 2, {0, 0}, 0},
     {OP_NEGATE, 1, {2.385}, -2.385},
+    {OP_HELD, 1, {2.385}, 2.385},
     {OP_POWER, 2, {2.385, 3}, 13.566416625},
     {OP_POWER, 2, {2.385, 0}, 1},
     {OP_POWER, 2, {2.25, -1.5}, 1 / 3.375},
@@ -458,6 +459,7 @@ START_TEST(unit_rules)
     CLASHES(LOOKUP, m, bound, e, bound, x), CLASHES(LOOKUP, x, bound, e), CLASHES(LOOKUP, m, m, e);
     CLASHES(LOOKUP, m, bound, e, bound);
     node_id per = graph_input(g, 4, 1, per_metre);
+    FITS(HELD, metre, m), FITS(HELD, number, x);
     FITS(EITHER, number, x, x), CLASHES(EITHER, x, m);
     FITS(YEARS, money, x, e, e), CLASHES(YEARS, m, e), CLASHES(YEARS, x, e, x);
     FITS(COURSE, number, x, per, per, x, per), CLASHES(COURSE, x, per, x, x, per);
@@ -631,6 +633,10 @@ START_TEST(degree_of_arithmetic)
     ck_assert_int_eq(graph_degree(g, graph_op(g, OP_SUM, 3, (node_id[]){x, xy, c})), 1);
     ck_assert_int_eq(graph_degree(g, graph_op(g, OP_SUM, 3, (node_id[]){x, square, c})), 2);
     ck_assert_int_eq(graph_degree(g, graph_op1(g, OP_NEGATE, xy)), 1);
+    node_id held = graph_op1(g, OP_HELD, square);
+    ck_assert_int_eq(graph_degree(g, held), 0);
+    ck_assert_int_eq(graph_degree(g, graph_op2(g, OP_MULTIPLY, held, xy)), 1);
+    ck_assert_int_eq(graph_degree(g, graph_op1(g, OP_EXP, held)), 0);
     ck_assert_int_eq(graph_degree(g, graph_op1(g, OP_COMPLEMENT, x)), 1);
 }
 END_TEST

@@ -81,6 +81,7 @@ double mean_sigma(double error_factor)
 int main(void)
 {
     SRunner *runner = srunner_create(mean_knot_suite());
+    srunner_add_suite(runner, mean_blend_suite());
     srunner_add_suite(runner, mean_random_suite());
     srunner_add_suite(runner, mean_sample_suite());
     srunner_add_suite(runner, stream_suite());

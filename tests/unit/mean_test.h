@@ -44,6 +44,7 @@ static const struct dim mean_number = {{0}};
 double mean_sigma(double error_factor);
 
 Suite *mean_knot_suite(void);
+Suite *mean_blend_suite(void);
 Suite *mean_random_suite(void);
 Suite *mean_sample_suite(void);
 Suite *stream_suite(void);
