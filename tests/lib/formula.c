@@ -169,14 +169,16 @@ static bool extreme(struct reader *r, bool least, long double *out)
     return true;
 }
 
-enum call { MIN, MAX, EXP, LOG, SQRT, RATIO, ANNUITY, LOOKUP, PROBABILITY, CALLS };
+enum call { MIN, MAX, EXP, LOG, SQRT, HELD, RATIO, ANNUITY, LOOKUP, PROBABILITY, CALLS };
 static const struct {
     const char *word;
     size_t n; /* arguments; 0: reads its own */
 } calls[CALLS] = {
-    [MIN] = {"min", 0},         [MAX] = {"max", 0},       [EXP] = {"exp", 1},
-    [LOG] = {"log", 1},         [SQRT] = {"sqrt", 1},     [RATIO] = {"ratio", 2},
-    [ANNUITY] = {"annuity", 3}, [LOOKUP] = {"lookup", 0}, [PROBABILITY] = {"probability", 0},
+    [MIN] = {"min", 0},       [MAX] = {"max", 0},
+    [EXP] = {"exp", 1},       [LOG] = {"log", 1},
+    [SQRT] = {"sqrt", 1},     [RATIO] = {"ratio", 2},
+    [HELD] = {"at-mean", 1},  [ANNUITY] = {"annuity", 3},
+    [LOOKUP] = {"lookup", 0}, [PROBABILITY] = {"probability", 0},
 };
 
 static bool own_call(struct reader *r, enum call c, long double *out)
@@ -203,6 +205,7 @@ static bool call(struct reader *r, enum call c, long double *out)
     case EXP: *out = expl(x[0]); break;
     case LOG: *out = logl(x[0]); break;
     case SQRT: *out = sqrtl(x[0]); break;
+    case HELD: *out = x[0]; break;
     case RATIO: *out = x[0] == 0 ? 0 : x[0] / x[1]; break;
     default: *out = annuity(x[0], x[1], x[2]); break;
     }
