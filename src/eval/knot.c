@@ -22,7 +22,7 @@
 /* The last level, by the number of inputs. Two inputs that have not come as near as this to one
  * another then are sampled: there is a jump, or a kink that weighs. */
 static const size_t last_level[3] = {0, SPREAD_LEVELS - 1, 2};
-#define NEAR 1e-3
+#define NEAR 2e-5
 
 /* A pair of points of less weight, of 1 in the middle, is left out: z1^2 + z2^2 > 12^2, further
  * out than either rule goes. */
@@ -185,18 +185,41 @@ static bool add_line(struct knots *k, size_t level)
     return true;
 }
 
-/* The same of two inputs; the first is the one whose name comes first. */
-static bool add_plane(struct knots *k, size_t level)
+/* Point i of one input with point j of the other, where their weight matters. */
+static bool add_pair(struct knots *k, size_t first, size_t i, size_t j)
+{
+    const struct spread *a = k->inputs.at[first], *b = k->inputs.at[1 - first];
+    double weight = a->weight[i] * b->weight[j];
+    k->x.at[first] = a->x[i];
+    k->x.at[1 - first] = b->x[j];
+    return weight < LEAST_WEIGHT || add_point(k, weight, k->mean.at);
+}
+
+/* Is neither of the two inputs discrete? Then there are two stages for each level. */
+static bool is_lattice(const struct knots *k)
+{
+    return k->n_inputs == 2 && !k->inputs.at[0]->is_discrete && !k->inputs.at[1]->is_discrete;
+}
+
+static size_t level_of(const struct knots *k, size_t stage)
+{
+    return is_lattice(k) ? (stage + 1) / 2 : stage;
+}
+
+/* Of two inputs; the first is the one whose name comes first. A level is the lattice of the level
+ * before with the middles of its squares (stages with odd numbers), then with the middles of the
+ * sides too: twice as many points each time. With atoms a level comes in one stage. */
+static bool add_plane(struct knots *k, size_t stage)
 {
     size_t first = strcmp(k->inputs.at[0]->name, k->inputs.at[1]->name) > 0;
+    size_t level = level_of(k, stage);
     const struct spread *a = k->inputs.at[first], *b = k->inputs.at[1 - first];
     size_t a_had = level ? a->n[level - 1] : 0, b_had = level ? b->n[level - 1] : 0;
-    for (size_t i = 0; i < a->n[level]; i++)
-        for (size_t j = i < a_had ? b_had : 0; j < b->n[level]; j++) {
-            double weight = a->weight[i] * b->weight[j];
-            k->x.at[first] = a->x[i];
-            k->x.at[1 - first] = b->x[j];
-            if (weight >= LEAST_WEIGHT && !add_point(k, weight, k->mean.at))
+    bool lattice = is_lattice(k), is_middle = lattice && stage % 2 == 1;
+    for (size_t i = is_middle ? a_had : 0; i < a->n[level]; i++)
+        for (size_t j = is_middle || i < a_had ? b_had : 0; j < b->n[level]; j++) {
+            bool was_middle = lattice && stage > 0 && !is_middle && i >= a_had && j >= b_had;
+            if (!was_middle && !add_pair(k, first, i, j))
                 return false;
         }
     return true;
@@ -248,17 +271,17 @@ static ohmen_status no_mean(const struct knots *k, ohmen_error *e)
 static ohmen_status integrate(struct knots *k, double *reached, ohmen_error *e)
 {
     bool is_done = false;
-    for (size_t level = 0; !is_done && level <= last_level[k->n_inputs]; level++) {
+    for (size_t stage = 0; !is_done && level_of(k, stage) <= last_level[k->n_inputs]; stage++) {
         bool are_discrete;
-        ohmen_status status = find_rules(k, level, &are_discrete, e);
+        ohmen_status status = find_rules(k, level_of(k, stage), &are_discrete, e);
         if (status != OHMEN_OK)
             return status;
-        if (!add_points(k, level))
+        if (!add_points(k, stage))
             return no_mean(k, e);
         *reached = change(k);
         if (are_discrete)
             *reached = 0;
-        is_done = are_discrete || (level > 0 && *reached <= AGREED);
+        is_done = are_discrete || (stage > 0 && *reached <= AGREED);
     }
     for (size_t i = 0; i < k->n_results; i++)
         k->mean.at[i] = k->before.at[i];

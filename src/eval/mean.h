@@ -7,6 +7,7 @@
  * rule makes of their means; so sums stay sums and products of independent things stay products.
  * The remaining nodes ("knots") are integrated over their curved inputs (graph_curved), with
  * everything below them evaluated anew at each point and the other inputs held at their means:
+ *   none             (of a DIAGRAM, see below) one evaluation
  *   up to 2 inputs   quadrature: a discrete input by its atoms, any other by the trapezoidal rule
  *                    in z, x = quantile(normal(z)) (exponentially convergent for smooth x:
  *                    Trefethen, Weideman, SIAM Review 56 (2014) 385), in steps of 1, 1/2, 1/4 ...
@@ -16,15 +17,27 @@
  *                    are keyed by each input's name, so that the same input has the same values in
  *                    every knot; the standard error is that of the 16 means
  *
+ * A DIAGRAM is linear in the probability of each variable, at each time. It is integrated in that
+ * way over those inputs only that two of its variables have in common, and at each point every
+ * variable stands at its mean over the curved inputs that it has alone (a COURSE: over time): by
+ * atoms and by the trapezoidal rule, until the last halving changed no argument of the course, nor
+ * its probability early and late in the longest stretch, by more than 1e-6. What a variable has
+ * alone is so integrated exactly (1e-9 where it is smooth) also where the shared inputs are
+ * sampled. Of more than 2 inputs of one variable, and where 5 halvings (1 with 2 inputs) do not
+ * suffice, they count among the shared ones. Points are left out that have less than 1e-12 of each.
+ *
+ * HELD stands at the mean of its argument in all of this, does not move with inputs, and hands on
+ * no standard error; what reads it has the mean that belongs to that number.
+ *
  * What quadrature reaches (computed; tests hold it to closed forms): 1e-9 relative where function
  * and quantile are smooth, mostly 1e-12. One input, steps down to 1/512: 2e-6 at a kink (min, max,
  * a triangular input), 4e-4 of the height of a jump (lookup). Two inputs, steps down to 1/4: 1e-3
- * at a kink; where the last two steps are further apart than 1e-3, as at most jumps, the knot is
+ * at a kink; where the last two are further apart than 2e-5, as at most jumps, the knot is
  * sampled as if it had more inputs. Pairs of points with z1^2 + z2^2 > 144 are left out.
  *
  * What a sample reaches: for moderate spread the printed error holds (95 % intervals of Student's t
  * with 15 degrees of freedom hold the mean in 94 % of cases). It is too small where the mean hangs
- * on what 1024 points hardly meet: products of several inputs with error factors of 3 and more that
+ * on what 512 points hardly meet: products of several inputs with error factors of 3 and more that
  * enter twice, or combinations of atoms with a probability below 1e-3.
  *
  * Invariant: the same graph and names give the same bytes, whatever else the graph holds. Names
@@ -35,7 +48,7 @@
 #include "eval/eval.h"
 
 #define MEAN_SETS 16
-#define MEAN_STRATA 64
+#define MEAN_STRATA 32
 
 /* What the graph does not know of its inputs; `input` is the number of graph_input. */
 struct mean_source {

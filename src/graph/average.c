@@ -147,24 +147,32 @@ static bool has_points(const struct kept_set *s, const struct gathered *points)
            memcmp(s->begin, points->begin, size) == 0;
 }
 
+/* Makes the set one of the points that are gathered: nothing in it counts any more. */
+static void begin_set(struct averages *v, struct kept_set *s)
+{
+    s->n = v->points.n;
+    memcpy(s->t, v->points.t, sizeof s->t);
+    memcpy(s->begin, v->points.begin, sizeof s->begin);
+    for (size_t i = 0; i < v->n_varying; i++) {
+        s->edition[i] = 0;
+        averages_moments(v, i, &s->at[i]);
+    }
+}
+
 /* The probabilities of varying variables at the points, of which those that stay are there where
  * the set was met before. */
 static void place_courses(struct averages *v)
 {
     struct kept_set *s = set_of(v);
-    bool known = has_points(s, &v->points);
-    s->n = v->points.n;
-    memcpy(s->t, v->points.t, sizeof s->t);
-    memcpy(s->begin, v->points.begin, sizeof s->begin);
+    if (!has_points(s, &v->points))
+        begin_set(v, s);
     for (size_t i = 0; i < v->n_varying; i++) {
         const struct varying *one = &v->varying[i];
-        v->p[one->variable] = s->p[i];
-        v->q[one->variable] = s->q[i];
-        if (known && s->edition[i] == one->edition)
+        v->p[one->variable] = s->p[one->same];
+        v->q[one->variable] = s->q[one->same];
+        if (one->same != i || s->edition[i] == one->edition)
             continue;
         s->edition[i] = one->edition;
-        if (!known)
-            averages_moments(v, i, &s->at[i]);
         course_lanes(&one->versions, &s->at[i], s->p[i], s->q[i]);
     }
 }
@@ -302,6 +310,23 @@ static bool take_varying(struct averages *v, struct varying *one, bool changed)
     return true;
 }
 
+static bool are_equal(const struct varying *a, const struct varying *b)
+{
+    return a->course == b->course && a->versions.n == 1 && b->versions.n == 1 &&
+           memcmp(a->versions.x, b->versions.x, sizeof *a->versions.x) == 0;
+}
+
+static void find_equals(struct averages *v)
+{
+    for (size_t i = 0; i < v->n_varying; i++) {
+        struct varying *one = &v->varying[i];
+        one->same = i;
+        for (size_t k = 0; k < i && one->same == i; k++)
+            if (are_equal(&v->varying[k], one))
+                one->same = v->varying[k].same;
+    }
+}
+
 bool averages_pass(struct averages *v, const struct averaged *what, const bool *changed,
                    void (*take)(struct averages *v, void *ctx), void *ctx)
 {
@@ -318,6 +343,7 @@ bool averages_pass(struct averages *v, const struct averaged *what, const bool *
     }
     if (!sound)
         return false;
+    find_equals(v);
     v->reach = average_reach(v->diagram, v->extremes, v->order);
     add_windows(v);
     return true;

@@ -7,7 +7,7 @@
 
 /* A variable that changes and occurs. */
 struct varying {
-    size_t variable;
+    size_t variable, same; /* same: the first that is equal, itself if there is none */
     const struct course *course;
     struct mixture versions;
     uint64_t edition; /* rises with each change */

@@ -208,6 +208,7 @@ enum call {
     EXP,
     LOG,
     SQRT,
+    HELD,
     RATIO,
     ANNUITY,
     LOOKUP,
@@ -221,10 +222,13 @@ static const struct {
     const char *word;
     size_t n; /* arguments; 0: reads its own */
 } calls[CALLS] = {
-    [MIN] = {"min", 0},         [MAX] = {"max", 0},       [EXP] = {"exp", 1},
-    [LOG] = {"log", 1},         [SQRT] = {"sqrt", 1},     [RATIO] = {"ratio", 2},
-    [ANNUITY] = {"annuity", 3}, [LOOKUP] = {"lookup", 0}, [PROBABILITY] = {"probability", 0},
-    [EITHER] = {"either", 0},   [COURSE] = {"course", 0}, [OVER] = {"over", 0},
+    [MIN] = {"min", 0},       [MAX] = {"max", 0},
+    [EXP] = {"exp", 1},       [LOG] = {"log", 1},
+    [SQRT] = {"sqrt", 1},     [HELD] = {"at-mean", 1},
+    [RATIO] = {"ratio", 2},   [ANNUITY] = {"annuity", 3},
+    [LOOKUP] = {"lookup", 0}, [PROBABILITY] = {"probability", 0},
+    [EITHER] = {"either", 0}, [COURSE] = {"course", 0},
+    [OVER] = {"over", 0},
 };
 
 static bool own_call(struct reader *r, enum call c, long double *out)
@@ -254,6 +258,7 @@ static bool call(struct reader *r, enum call c, long double *out)
     case EXP: *out = expl(x[0]); break;
     case LOG: *out = logl(x[0]); break;
     case SQRT: *out = sqrtl(x[0]); break;
+    case HELD: *out = x[0]; break;
     case RATIO: *out = x[0] == 0 ? 0 : x[0] / x[1]; break;
     default: *out = annuity(x[0], x[1], x[2]); break;
     }
