@@ -22,7 +22,7 @@
 /* The last level, by the number of inputs. Two inputs that have not come as near as this to one
  * another then are sampled: there is a jump, or a kink that weighs. */
 static const size_t last_level[3] = {0, SPREAD_LEVELS - 1, 2};
-#define NEAR 2e-5
+#define NEAR 1e-3
 
 /* A pair of points of less weight, of 1 in the middle, is left out: z1^2 + z2^2 > 12^2, further
  * out than either rule goes. */
@@ -201,6 +201,18 @@ static bool is_lattice(const struct knots *k)
     return k->n_inputs == 2 && !k->inputs.at[0]->is_discrete && !k->inputs.at[1]->is_discrete;
 }
 
+/* Does something between the node and its inputs jump, or turn sharply? Two lattices may then agree
+ * by chance: only whole levels are compared. */
+static bool has_corners(const struct knots *k)
+{
+    for (size_t i = 0; !k->blend && i < k->steps.n; i++) {
+        uint16_t op = graph_at(k->v->g, k->steps.at[i].node)->op;
+        if (op == OP_MIN || op == OP_MAX || op == OP_LOOKUP)
+            return true;
+    }
+    return false;
+}
+
 static size_t level_of(const struct knots *k, size_t stage)
 {
     return is_lattice(k) ? (stage + 1) / 2 : stage;
@@ -278,6 +290,8 @@ static ohmen_status integrate(struct knots *k, double *reached, ohmen_error *e)
             return status;
         if (!add_points(k, stage))
             return no_mean(k, e);
+        if (is_lattice(k) && stage % 2 == 1 && has_corners(k))
+            continue;
         *reached = change(k);
         if (are_discrete)
             *reached = 0;

@@ -32,7 +32,7 @@
  * What quadrature reaches (computed; tests hold it to closed forms): 1e-9 relative where function
  * and quantile are smooth, mostly 1e-12. One input, steps down to 1/512: 2e-6 at a kink (min, max,
  * a triangular input), 4e-4 of the height of a jump (lookup). Two inputs, steps down to 1/4: 1e-3
- * at a kink; where the last two are further apart than 2e-5, as at most jumps, the knot is
+ * at a kink; where the last two are further apart than 1e-3, as at most jumps, the knot is
  * sampled as if it had more inputs. Pairs of points with z1^2 + z2^2 > 144 are left out.
  *
  * What a sample reaches: for moderate spread the printed error holds (95 % intervals of Student's t
