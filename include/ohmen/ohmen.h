@@ -131,6 +131,11 @@ ohmen_status ohmen_backup(ohmen_register *r, const char *path, ohmen_error *e);
 /* Each hazard: frequency, damaging frequency, mean damage, risk, rank. */
 ohmen_status ohmen_hazards(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
                            ohmen_error *e);
+/* What protection hinges on: the elements that carry the risk, single points of failure, breakers
+ * without breaker failure protection, tests, what faults take away, unwanted operation, common
+ * causes. */
+ohmen_status ohmen_protection(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                              ohmen_error *e);
 /* Everything of one kind ("elements"), as a table. kind: a section of the documents. */
 ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
                         ohmen_report **out, ohmen_error *e);

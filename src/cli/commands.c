@@ -75,6 +75,17 @@ const struct command commands[] = {
              "mean damage, the risk (frequency times damage, in money per year) and its rank.",
      .example = "ohmen -r skerry.ohmen hazards",
      .run = command_hazards},
+    {"protection",
+     JOB_RISK,
+     {0},
+     .options = READING_HAZARDS,
+     .brief = "what protection hinges on: weak points and tests",
+     .text = "Prints which elements carry most of the risk, of which one alone leaves a fault "
+             "uncleared, breakers that no breaker failure protection backs up, overdue tests and "
+             "what no test shows, what a fault itself puts out of action, unwanted operation, and "
+             "common causes. It is a chapter of the report.",
+     .example = "ohmen -r skerry.ohmen protection --width 80",
+     .run = command_protection},
     {"list",
      JOB_RISK,
      {"KIND", 1, 1, "a section of the documents, such as elements, schemes, hazards or options"},

@@ -85,6 +85,13 @@ static ohmen_status make_hazards(ohmen_register *r, const struct args *args, ohm
     return ohmen_hazards(r, &query, out, e);
 }
 
+static ohmen_status make_protection(ohmen_register *r, const struct args *args, ohmen_report **out,
+                                    ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_protection(r, &query, out, e);
+}
+
 static ohmen_status make_list(ohmen_register *r, const struct args *args, ohmen_report **out,
                               ohmen_error *e)
 {
@@ -143,6 +150,11 @@ static ohmen_status make_verify(ohmen_register *r, const struct args *args, ohme
 ohmen_status command_hazards(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_hazards, e);
+}
+
+ohmen_status command_protection(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_protection, e);
 }
 
 ohmen_status command_list(const struct call *call, ohmen_error *e)

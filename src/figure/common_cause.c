@@ -438,6 +438,7 @@ static void compile_alone_unit(struct figures *f, const struct variant *v, const
     x->whole = compile_behaviour(&b, &k, &x->span);
     b.unit->exports = x;
     b.unit->main = x->whole.fails;
+    b.unit->also = whole_unit->also;
     whole_unit->also = b.unit;
     compiled_end(&b);
 }

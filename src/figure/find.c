@@ -5,6 +5,7 @@
 #include "figure/consequences.h"
 #include "figure/importance.h"
 #include "figure/states.h"
+#include "figure/upkeep.h"
 
 /* "ID.rest@A+S=x+[name]" cut into its parts. */
 struct name_parts {
@@ -257,6 +258,19 @@ static ohmen_status group_unit(struct figures *f, const char *id, const struct c
     return status;
 }
 
+/* What an element does beside its common causes, and figures of its upkeep where it is tested:
+ * they are made when asked for. */
+static ohmen_status add_parts(struct figures *f, const struct variant *v, const struct compiled *u,
+                              ohmen_error *e)
+{
+    struct upkeep upkeep;
+    if (!u->object || u->object->kind != KIND_ELEMENT)
+        return OHMEN_OK;
+    if (((const struct element_exports *)u->exports)->tested)
+        upkeep_of(f, u, &upkeep);
+    return compile_alone(f, v, u->id, e);
+}
+
 ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
 {
     struct name_parts p;
@@ -274,8 +288,8 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
         return unknown_object(f, p.id, e);
     else
         status = figures_compile(f, v, p.id, &u, e);
-    if (status == OHMEN_OK && u->object && u->object->kind == KIND_ELEMENT)
-        status = compile_alone(f, v, p.id, e);
+    if (status == OHMEN_OK)
+        status = add_parts(f, v, u, e);
     if (status == OHMEN_OK && u->object)
         status = to_part(f, v, p.rest, &u, e);
     return status == OHMEN_OK ? compiled_find(f, u, p.rest, out, e) : status;

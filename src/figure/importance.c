@@ -14,8 +14,10 @@
 struct gathering {
     struct figures *f;
     struct arena *arena;
+    const char *hazard; /* that is being gathered, or NULL */
     ARRAY(struct effect) list;
-    struct strmap index; /* key of the event -> (void *)(index + 1) */
+    ARRAY(const char *) last; /* for each: the last hazard that counted */
+    struct strmap index;      /* key of the event -> (void *)(index + 1) */
 };
 
 /* Events of rows and disabled elements are each hazard's own. */
@@ -33,14 +35,20 @@ static void add_effect(struct gathering *g, const struct compiled *u, const stru
     const char *key = event_key(g, u, e);
     uintptr_t known = (uintptr_t)strmap_get(&g->index, key);
     if (!known) {
-        *array_push(g->arena, &g->list) = (struct effect){.event = *e};
+        bool shared = e->kind == EVENT_ELEMENT || e->kind == EVENT_SHOCK;
+        *array_push(g->arena, &g->list) =
+            (struct effect){.event = *e, .hazard = shared ? NULL : g->hazard};
+        *array_push(g->arena, &g->last) = NULL;
         known = g->list.n;
         strmap_set(g->arena, &g->index, key, (void *)known);
     }
     struct effect *x = &g->list.at[known - 1];
     x->gain += gain;
     x->share += share;
-    x->n_hazards += gain != 0;
+    if (gain != 0 && (!g->hazard || g->last.at[known - 1] != g->hazard)) {
+        g->last.at[known - 1] = g->hazard;
+        x->n_hazards++;
+    }
 }
 
 /* Effects through one diagram; eval_backward was called. */
@@ -56,12 +64,17 @@ static void gather(struct gathering *g, const struct compiled *u, node_id diagra
             add_effect(g, u, &events[i], gain[i], share[i]);
 }
 
+/* One hazard, in whatever operating states. */
 static void gather_hazard(struct gathering *g, const struct compiled *u)
 {
     const struct hazard_exports *x = u->exports;
-    for (size_t i = 0; i < x->n_states; i++)
-        if (x->states[i].unit)
-            gather_hazard(g, x->states[i].unit);
+    g->hazard = u->id;
+    for (size_t i = 0; i < x->n_states; i++) {
+        const struct compiled *state = x->states[i].unit;
+        const struct hazard_exports *in = state ? state->exports : NULL;
+        if (state)
+            gather(g, state, in->node, in->n_events, in->events);
+    }
     if (x->n_states == 0)
         gather(g, u, x->node, x->n_events, x->events);
 }
@@ -106,6 +119,23 @@ void importance_in_scheme(struct figures *f, struct arena *a, const struct compi
     go_back(f, a, figure_at(f, scheme->main)->node);
     gather(&g, scheme, x->node, x->n_events, x->events);
     hand_out(&g, figure_at_means(f, scheme->main), out);
+}
+
+/* The total is a plain sum of the risks: what a diagram does to it, it does to its hazard's. */
+void importance_in_each(struct figures *f, struct arena *a, size_t n,
+                        const struct compiled *const *hazards, struct effects *out,
+                        struct effects *each)
+{
+    struct gathering all = {.f = f, .arena = a};
+    figure_id total = figures_total(f, n, hazards);
+    go_back(f, a, figure_at(f, total)->node);
+    for (size_t i = 0; i < n; i++) {
+        struct gathering one = {.f = f, .arena = a};
+        gather_hazard(&all, hazards[i]);
+        gather_hazard(&one, hazards[i]);
+        hand_out(&one, figure_at_means(f, hazards[i]->main), &each[i]);
+    }
+    hand_out(&all, figure_at_means(f, total), out);
 }
 
 ohmen_status importance_in_all(struct figures *f, struct arena *a, size_t n,

@@ -22,9 +22,10 @@
 
 struct effect {
     struct event event;
-    size_t n_hazards; /* in how many hazards it has any effect */
-    double gain;      /* R1 - R0 */
-    double share;     /* R - R0 */
+    const char *hazard; /* whose own event it is (EVENT_DISABLED); NULL: of all that rest on it */
+    size_t n_hazards;   /* in how many hazards it has any effect */
+    double gain;        /* R1 - R0 */
+    double share;       /* R - R0 */
 };
 struct effects {
     double whole; /* R */
@@ -41,6 +42,11 @@ void importance_in_hazard(struct figures *f, struct arena *a, const struct compi
 ohmen_status importance_in_all(struct figures *f, struct arena *a, size_t n,
                                const struct compiled *const *hazards, struct effects *out,
                                ohmen_error *e);
+/* The same, and on the risk of each of them: each[i] of hazards[i]. figures_total of these hazards
+ * and then figures_evaluate were called. One pass for all. */
+void importance_in_each(struct figures *f, struct arena *a, size_t n,
+                        const struct compiled *const *hazards, struct effects *out,
+                        struct effects *each);
 /* On the failure of a scheme. */
 void importance_in_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
                           struct effects *out);

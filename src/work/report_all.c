@@ -1,10 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The whole register as one document: title block, summary, hazards, grid, decisions,
- * inputs with their sources, what was left out, cautions. */
-#include "work/work.h"
+/* The whole register as one document: title block, summary, hazards, grid, protection,
+ * decisions, inputs with their sources, what was left out, cautions. */
+#include "work/protection.h"
 
 struct whole {
     struct hazards hazards;
+    struct protection protection;
     ARRAY(struct weighing *) decisions;
     ARRAY(const char *) trees; /* decisions that are trees */
 };
@@ -170,6 +171,8 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
     if (status == OHMEN_OK)
         status = job_compile_hazards(j, &w.hazards, e);
     if (status == OHMEN_OK)
+        status = protection_compile(j, &w.hazards, &w.protection, e);
+    if (status == OHMEN_OK)
         status = compile_decisions(j, &w, e);
     if (status == OHMEN_OK)
         status = figures_evaluate(j->figures, e);
@@ -181,6 +184,8 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
     report_heading(j->report, 2, "Hazards");
     part_hazards(j, &w.hazards);
     part_hazard_grid(j, &w.hazards);
+    report_heading(j->report, 2, "What protection hinges on");
+    part_protection(j, &w.protection, 3);
     part_decisions(j, &w);
     part_inputs(j);
     part_sources(j);

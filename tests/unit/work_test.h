@@ -63,5 +63,6 @@ void work_journal_tests(Suite *suite);
 void work_error_tests(Suite *suite);
 void work_round_tests(Suite *suite);
 void work_bad_tests(Suite *suite);
+void work_protection_tests(Suite *suite);
 
 #endif

@@ -16,13 +16,14 @@
 /* A report that no failure may replace. */
 static ohmen_report *const untouched = (ohmen_report *)&test_source;
 
-enum call { HAZARDS, LIST, SHOW, WEIGH, GRID, EXPLAIN, REPORT, HISTORY };
+enum call { HAZARDS, PROTECTION, LIST, SHOW, WEIGH, GRID, EXPLAIN, REPORT, HISTORY };
 
 static ohmen_status call_one(enum call call, ohmen_register *r, const ohmen_query *q,
                              const char *operand, ohmen_report **out, ohmen_error *e)
 {
     switch (call) {
     case HAZARDS: return ohmen_hazards(r, q, out, e);
+    case PROTECTION: return ohmen_protection(r, q, out, e);
     case LIST: return ohmen_list(r, q, operand, out, e);
     case SHOW: return ohmen_show(r, q, operand, out, e);
     case WEIGH: return ohmen_weigh(r, q, operand, out, e);
@@ -98,6 +99,7 @@ START_TEST(queries_that_find_nothing)
     }
     ohmen_query q = {.site = "VHX"};
     expect(r, HAZARDS, &q, NULL, OHMEN_UNKNOWN, "did you mean \"VH\"?");
+    expect(r, PROTECTION, &q, NULL, OHMEN_UNKNOWN, "did you mean \"VH\"?");
     expect(r, REPORT, &q, NULL, OHMEN_UNKNOWN, "did you mean \"VH\"?");
     ohmen_close(r);
     arena_free(a);
@@ -109,6 +111,7 @@ START_TEST(an_empty_register_has_no_figures)
     struct arena *a = test_arena();
     ohmen_register *r = test_open(test_new(a), OHMEN_READ);
     expect(r, HAZARDS, NULL, NULL, OHMEN_UNKNOWN, "is empty");
+    expect(r, PROTECTION, NULL, NULL, OHMEN_UNKNOWN, "is empty");
     expect(r, REPORT, NULL, NULL, OHMEN_UNKNOWN, "is empty");
     expect(r, LIST, NULL, "hazards", OHMEN_UNKNOWN, "is empty");
     ohmen_close(r);
