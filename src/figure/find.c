@@ -117,6 +117,16 @@ ohmen_status compiled_find(struct figures *f, const struct compiled *u, const ch
                      nearest_hint(f->arena, &near));
 }
 
+/* What an element does beside its common causes is a unit that only its users compile. */
+static ohmen_status find_alone(struct figures *f, const struct variant *v, const char *id,
+                               const char *rest, ohmen_error *e)
+{
+    const char *dot = strchr(rest, '.');
+    bool asked = model_find(v->model, id)->kind == KIND_ELEMENT && dot &&
+                 (text_equal(dot, ".alone") || text_starts(dot, ".alone."));
+    return asked ? compile_alone(f, v, id, e) : OHMEN_OK;
+}
+
 ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
 {
     struct name_parts p;
@@ -132,6 +142,8 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
         return unknown_object(f, p.id, e);
     else
         status = figures_compile(f, v, p.id, &u, e);
+    if (status == OHMEN_OK && !text_equal(p.id, REGISTER_ID))
+        status = find_alone(f, v, p.id, p.rest, e);
     return status == OHMEN_OK ? compiled_find(f, u, p.rest, out, e) : status;
 }
 
