@@ -100,8 +100,10 @@ const struct command commands[] = {
      {"ID", 1, 1, "the object, such as H-VH-BUS1"},
      .options = READING,
      .brief = "one object with all that it says",
-     .text = "Prints one object of any kind: a hazard with the numbers of its event tree, an "
-             "element or a scheme with where it is used.",
+     .text = "Prints one object of any kind: a hazard with the numbers of its event tree, what "
+             "its risk hinges on and its minimal cut sets; an element with what it fails of, over "
+             "time, and where that matters; a scheme with its structure and where it is called "
+             "on.",
      .example = "ohmen -r skerry.ohmen show H-VH-BUS1",
      .run = command_show},
     {"grid",

@@ -228,25 +228,96 @@ static const struct hazard_exports *exports_of(const struct compiled *hazard)
     return hazard->exports;
 }
 
-/* Of a mean over operating states, those of the state whose event tree stands for all. */
-void cut_sets_of_hazard(struct figures *f, struct arena *a, const struct compiled *hazard,
-                        size_t limit, struct cut_sets *out)
+/* The hazard whose event tree stands for all operating states. */
+static const struct compiled *in_one_state(const struct compiled *hazard)
 {
     const struct hazard_exports *x = hazard->exports;
     for (size_t i = 0; i < x->n_states; i++)
         if (x->states[i].unit && exports_of(x->states[i].unit)->node == x->node)
-            hazard = x->states[i].unit;
+            return x->states[i].unit;
+    return hazard;
+}
+
+void cut_sets_of_hazard(struct figures *f, struct arena *a, const struct compiled *hazard,
+                        size_t limit, struct cut_sets *out)
+{
     struct wiring w;
+    hazard = in_one_state(hazard);
     const struct diagram *d = hazard_uncleared(f, hazard, &w);
     cut_sets(f, a, hazard, d, &w, limit, out);
+}
+
+static void scheme_wiring(struct figures *f, const struct compiled *scheme, struct wiring *w)
+{
+    wiring_init(w, f, scheme->variant, NULL);
+    wiring_order(w, scheme->id);
+}
+
+static const struct diagram *scheme_diagram(const struct compiled *scheme)
+{
+    return ((const struct scheme_exports *)scheme->exports)->diagram;
 }
 
 void cut_sets_of_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
                         size_t limit, struct cut_sets *out)
 {
     struct wiring w;
-    wiring_init(&w, f, scheme->variant, NULL);
-    wiring_order(&w, scheme->id);
-    cut_sets(f, a, scheme, ((const struct scheme_exports *)scheme->exports)->diagram, &w, limit,
-             out);
+    scheme_wiring(f, scheme, &w);
+    cut_sets(f, a, scheme, scheme_diagram(scheme), &w, limit, out);
+}
+
+/* --- single failures --- */
+
+/* Is the first root true when this variable alone is? None is, with UINT32_MAX. */
+static bool is_enough(const struct diagram *d, uint32_t variable)
+{
+    uint32_t at = d->roots[0];
+    while (at >= 2) {
+        const struct diagram_node *n = &d->nodes[at - 2];
+        at = n->variable == variable ? n->high : n->low;
+    }
+    return at == 1;
+}
+
+static int by_probability(const void *p, const void *q)
+{
+    const struct cut_set *a = p, *b = q;
+    if (a->probability != b->probability)
+        return a->probability > b->probability ? -1 : 1;
+    return text_compare(a->events[0]->name, b->events[0]->name);
+}
+
+static void single_failures(struct figures *f, struct arena *a, const struct compiled *u,
+                            const struct diagram *d, const struct wiring *w, struct cut_sets *out)
+{
+    *out = (struct cut_sets){.at = NEW_ARRAY(a, w->events.n + 1, struct cut_set)};
+    if (is_enough(d, UINT32_MAX))
+        return; /* nothing need fail */
+    for (uint32_t i = 0; i < w->events.n; i++) {
+        if (!is_enough(d, i))
+            continue;
+        const struct event **events = NEW(a, const struct event *);
+        events[0] = &w->events.at[i];
+        out->at[out->n++] = (struct cut_set){event_probability(f, u, events[0]), 1, events};
+    }
+    if (out->n > 1)
+        qsort(out->at, out->n, sizeof *out->at, by_probability);
+    out->n_all = out->n;
+}
+
+void single_failures_of_hazard(struct figures *f, struct arena *a, const struct compiled *hazard,
+                               struct cut_sets *out)
+{
+    struct wiring w;
+    hazard = in_one_state(hazard);
+    const struct diagram *d = hazard_uncleared(f, hazard, &w);
+    single_failures(f, a, hazard, d, &w, out);
+}
+
+void single_failures_of_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
+                               struct cut_sets *out)
+{
+    struct wiring w;
+    scheme_wiring(f, scheme, &w);
+    single_failures(f, a, scheme, scheme_diagram(scheme), &w, out);
 }

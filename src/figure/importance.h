@@ -75,4 +75,10 @@ void cut_sets_of_hazard(struct figures *f, struct arena *a, const struct compile
 void cut_sets_of_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
                         size_t limit, struct cut_sets *out);
 
+/* The minimal cut sets of one event, all of them: found without a search, so never too_many. */
+void single_failures_of_hazard(struct figures *f, struct arena *a, const struct compiled *hazard,
+                               struct cut_sets *out);
+void single_failures_of_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
+                               struct cut_sets *out);
+
 #endif

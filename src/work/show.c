@@ -3,15 +3,13 @@
 #include <math.h>
 #include <string.h>
 
-#include "work/work.h"
-
-/* Columns of what one field says. */
-enum { BRIEF = 400 };
+#include "work/show.h"
 
 /* --- what it says --- */
 
 /* Fields of a hazard that stand in tables of their own. */
 static const char *const tabled[] = {"response/*/cleared-by",
+                                     "response/*/breaker-failure-of",
                                      "response/*/in",
                                      "response/*/sees",
                                      "response/*/outcome",
@@ -64,7 +62,7 @@ static void flatten(struct job *j, struct block *b, const struct object *o, cons
     if (!deep) {
         struct row *row = block_row(j->report, b);
         row_text(j->report, row, path);
-        row_text(j->report, row, node_says(j->arena, n, BRIEF));
+        row_text(j->report, row, node_says(j->arena, n, SHOW_BRIEF));
         return;
     }
     for (size_t i = 0; i < n->n; i++)
@@ -84,138 +82,6 @@ static void part_object(struct job *j, const struct object *o, const struct node
     block_column(r, b, "field", "Field", "", STYLE_PLAIN);
     block_column(r, b, "value", "Says", "", STYLE_PLAIN);
     flatten(j, b, o, "", doc);
-}
-
-/* --- the response and the damage of a hazard, as they are stated --- */
-
-static void write_branch(struct text *t, const struct node *n);
-
-static const char *share_words(struct arena *a, const struct node *branch)
-{
-    const struct node *share = node_get(branch, "share");
-    const struct node *is = share->type == NODE_MAP ? node_get(share, "is") : NULL;
-    return node_says(a, is ? is : share, BRIEF);
-}
-
-/* "20 %: fire; rest: burnt", the rest last. */
-static void write_split(struct text *t, const struct node *split)
-{
-    const char *gap = "";
-    for (size_t i = 0; i < 2 * split->n; i++) {
-        const struct node *branch = split->pairs[i % split->n].value;
-        const char *share = share_words(t->arena, branch);
-        bool last = i >= split->n, ends = node_get(branch, "outcome") != NULL;
-        if (text_equal(share, "rest") != last)
-            continue;
-        text_printf(t, "%s%s: %s", gap, share, ends ? "" : "(");
-        write_branch(t, branch);
-        text_add(t, ends ? "" : ")");
-        gap = "; ";
-    }
-}
-
-static void write_branch(struct text *t, const struct node *n)
-{
-    const struct node *outcome = node_get(n, "outcome"), *split = node_get(n, "split");
-    if (outcome) {
-        text_add(t, outcome->text);
-        return;
-    }
-    if (split) {
-        write_split(t, split);
-        return;
-    }
-    text_printf(t, "if %s works: ", node_get(n, "if-works")->text);
-    write_branch(t, node_get(n, "yes"));
-    text_add(t, "; else: ");
-    write_branch(t, node_get(n, "no"));
-}
-
-/* What a field says without its source, or an empty cell. */
-static void stated_cell(struct job *j, struct row *row, const struct node *n)
-{
-    const struct node *is = n && n->type == NODE_MAP ? node_get(n, "is") : NULL;
-    if (n)
-        row_text(j->report, row, node_says(j->arena, is ? is : n, BRIEF));
-    else
-        row_empty(j->report, row);
-}
-
-static void source_cell(struct job *j, struct row *row, const struct node *n)
-{
-    stated_cell(j, row, n && n->type == NODE_MAP ? node_get(n, "source") : NULL);
-}
-
-static void response_row(struct job *j, struct block *b, const char *key, const struct node *n)
-{
-    struct report *r = j->report;
-    struct row *row = block_row(r, b);
-    struct text ends;
-    text_init(&ends, j->arena);
-    write_branch(&ends, n);
-    row_text(r, row, key);
-    stated_cell(j, row, node_get(n, "cleared-by"));
-    stated_cell(j, row, node_get(n, "in"));
-    stated_cell(j, row, node_get(n, "sees"));
-    source_cell(j, row, node_get(n, "sees"));
-    row_text(r, row, text_str(&ends));
-}
-
-static struct block *response_table(struct report *r)
-{
-    struct block *b = report_table(r, "response", "Response");
-    block_column(r, b, "row", "Row", "", STYLE_PLAIN);
-    block_column(r, b, "cleared-by", "Cleared by", "", STYLE_PLAIN);
-    block_column(r, b, "in", "In", "", STYLE_PLAIN)->right = true;
-    block_column(r, b, "sees", "Sees", "", STYLE_PLAIN)->keep = 2;
-    block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 1;
-    block_column(r, b, "ends", "Ends in", "", STYLE_PLAIN);
-    return b;
-}
-
-/* In the order in which the rows act, which is that of the ends; where there are no figures, as
- * in the document. */
-static void part_response(struct job *j, const struct node *doc, const struct hazard_exports *x)
-{
-    const struct node *rows = node_get(doc, "response");
-    struct block *b = response_table(j->report);
-    for (size_t i = 0; x && i < x->n_ends; i++)
-        if (i == 0 || !text_equal(x->ends[i].row, x->ends[i - 1].row))
-            response_row(j, b, x->ends[i].row, node_get(rows, x->ends[i].row));
-    for (size_t i = 0; !x && i < rows->n; i++)
-        response_row(j, b, rows->pairs[i].key, rows->pairs[i].value);
-}
-
-static void damage_row(struct job *j, struct block *b, const char *outcome, const struct pair *item)
-{
-    struct row *row = block_row(j->report, b);
-    const struct node *n = item->value, *is = node_get(n, "is");
-    row_text(j->report, row, outcome);
-    row_text(j->report, row, item->key);
-    stated_cell(j, row, node_get(n, "category"));
-    row_text(j->report, row, is ? "is" : "varies");
-    stated_cell(j, row, is ? is : node_get(n, "varies"));
-    source_cell(j, row, n);
-}
-
-static void part_damage(struct job *j, const struct node *doc)
-{
-    struct report *r = j->report;
-    const struct node *outcomes = node_get(doc, "outcomes");
-    struct block *b = report_table(r, "damage", "Damage as stated");
-    block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
-    block_column(r, b, "item", "Item", "", STYLE_PLAIN);
-    block_column(r, b, "category", "Category", "", STYLE_PLAIN)->keep = 2;
-    block_column(r, b, "sort", "", "", STYLE_PLAIN);
-    block_column(r, b, "stated", "As stated", "", STYLE_PLAIN);
-    block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 1;
-    for (size_t i = 0; outcomes && i < outcomes->n; i++) {
-        const struct node *items = node_get(outcomes->pairs[i].value, "damage");
-        for (size_t k = 0; items && k < items->n; k++)
-            damage_row(j, b, outcomes->pairs[i].key, &items->pairs[k]);
-    }
-    if (b->rows.n == 0)
-        r->blocks.n--;
 }
 
 /* --- who refers to it --- */
@@ -258,7 +124,72 @@ static void part_users(struct job *j, const struct object *o)
         r->blocks.n--;
 }
 
+/* --- what it needs --- */
+
+static void structure_below(struct arena *a, const struct model *m, const struct structure *s,
+                            struct strmap *out)
+{
+    if (s->op == STRUCTURE_NAME)
+        parts_below(a, m, s->name, out);
+    for (size_t i = 0; i < s->n; i++)
+        structure_below(a, m, s->of[i], out);
+}
+
+void parts_below(struct arena *a, const struct model *m, const char *id, struct strmap *out)
+{
+    const struct object *o = model_find(m, id);
+    if (!o || strmap_has(out, id))
+        return;
+    strmap_set(a, out, id, (void *)o);
+    if (o->kind == KIND_SCHEME)
+        structure_below(a, m, ((const struct scheme *)o->data)->works, out);
+}
+
+/* --- who needs it --- */
+
+static bool refers_to_any(const struct object *o, const struct strmap *ids)
+{
+    for (size_t i = 0; i < o->refs.n; i++)
+        if (!o->refs.at[i].trace && strmap_has(ids, o->refs.at[i].id))
+            return true;
+    return false;
+}
+
+/* Adds the schemes that need one of these, as long as there are more. */
+static void add_schemes(struct job *j, struct strmap *ids)
+{
+    const struct objects *all = &j->model->of[KIND_SCHEME];
+    for (size_t before = 0; before != ids->n;) {
+        before = ids->n;
+        for (size_t i = 0; i < all->n; i++)
+            if (!strmap_has(ids, all->at[i]->id) && refers_to_any(all->at[i], ids))
+                strmap_set(j->arena, ids, all->at[i]->id, j);
+    }
+}
+
+void hazards_that_use(struct job *j, const char *id, struct hazard_list *out)
+{
+    const struct objects *all = &j->model->of[KIND_HAZARD];
+    struct strmap ids = {0};
+    strmap_set(j->arena, &ids, id, j);
+    add_schemes(j, &ids);
+    for (size_t i = 0; i < all->n; i++)
+        if (refers_to_any(all->at[i], &ids))
+            *array_push(j->arena, out) = all->at[i];
+}
+
 /* --- figures --- */
+
+void show_number(struct job *j, struct row *row, figure_id id)
+{
+    row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
+}
+
+const char *show_name(struct job *j, const char *id)
+{
+    const struct object *o = model_find(j->model, id);
+    return o ? object_name(o) : "";
+}
 
 /* The distribution behind a figure that is an input; NULL: it is a number or a formula. */
 static const struct quantity *distribution_of(const struct job *j, figure_id id)
@@ -288,7 +219,27 @@ static void quantile_cells(struct job *j, struct row *row, figure_id id, double 
             row_empty(j->report, row);
 }
 
-static void figures_table(struct job *j, const struct compiled *c)
+/* Years and the course of an element are told by its curve. */
+static bool is_curve(const struct figure *g)
+{
+    return g->property == PROPERTY_COURSE || (g->property == PROPERTY_FAILS && g->q1);
+}
+
+static void figure_row(struct job *j, struct block *b, figure_id id, bool uncertain)
+{
+    struct report *r = j->report;
+    struct row *row = block_row(r, b);
+    double shown;
+    const char *name = figure_name(j->figures, j->arena, id);
+    const char *unit = figure_display(j, id, &shown);
+    row_text(r, row, name);
+    row_number(r, row, shown, name);
+    if (uncertain)
+        quantile_cells(j, row, id, shown);
+    row_text(r, row, unit);
+}
+
+void show_figures_table(struct job *j, const struct compiled *c)
 {
     struct report *r = j->report;
     bool uncertain = any_distribution(j, c);
@@ -301,153 +252,9 @@ static void figures_table(struct job *j, const struct compiled *c)
         block_column(r, b, "p95", "95 %", "", STYLE_PLAIN)->keep = 1;
     }
     block_column(r, b, "unit", "Unit", "", STYLE_PLAIN);
-    for (figure_id i = c->first; i < c->first + c->n; i++) {
-        struct row *row = block_row(r, b);
-        double shown;
-        const char *name = figure_name(j->figures, j->arena, i);
-        const char *unit = figure_display(j, i, &shown);
-        row_text(r, row, name);
-        row_number(r, row, shown, name);
-        if (uncertain)
-            quantile_cells(j, row, i, shown);
-        row_text(r, row, unit);
-    }
-}
-
-static void number_cell(struct job *j, struct row *row, figure_id id)
-{
-    row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
-}
-
-static void ends_table(struct job *j, const struct compiled *c)
-{
-    struct report *r = j->report;
-    const struct hazard_exports *x = c->exports;
-    struct block *b = report_table(r, "ends", "Event tree: how it ends, given that it occurs");
-    block_column(r, b, "end", "End", "", STYLE_PLAIN);
-    block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
-    block_column(r, b, "probability", "Probability", "", STYLE_PROBABILITY);
-    block_column(r, b, "damage", "Damage", j->model->settings->currency, STYLE_MONEY)->keep = 1;
-    for (size_t i = 0; i < x->n_ends; i++) {
-        const struct end *end = &x->ends[i];
-        struct row *row = block_row(r, b);
-        row_text(r, row, end->path);
-        row_text(r, row, end->outcome);
-        number_cell(j, row, end->probability);
-        if (end->damage == FIGURE_NONE)
-            row_empty(r, row);
-        else
-            number_cell(j, row, end->damage);
-    }
-}
-
-static void outcomes_table(struct job *j, const struct compiled *c)
-{
-    struct report *r = j->report;
-    const struct hazard_exports *x = c->exports;
-    const struct hazard *h = c->object->data;
-    struct block *b = report_table(r, "outcomes", "Outcomes");
-    block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
-    block_column(r, b, "name", "What has happened", "", STYLE_PLAIN)->keep = 2;
-    block_column(r, b, "probability", "Probability", "", STYLE_PROBABILITY)->keep = 1;
-    block_column(r, b, "frequency", "Frequency", "1/a", STYLE_FREQUENCY)->keep = 3;
-    block_column(r, b, "damage", "Mean damage", j->model->settings->currency, STYLE_MONEY)->keep =
-        3;
-    block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
-    for (size_t k = 0; k < x->n_outcomes; k++) {
-        struct row *row = block_row(r, b);
-        row_text(r, row, h->outcomes.keys[k]);
-        row_text(r, row, ROW(struct outcome, h->outcomes, k)->name);
-        number_cell(j, row, x->probability[k]);
-        number_cell(j, row, x->frequency_of[k]);
-        number_cell(j, row, x->damage_of[k]);
-        number_cell(j, row, x->risk_of[k]);
-    }
-}
-
-static void hazard_pairs(struct job *j, const struct compiled *c)
-{
-    struct report *r = j->report;
-    const struct hazard_exports *x = c->exports;
-    const char *currency = j->model->settings->currency;
-    struct block *b = report_pairs(r, "hazard-figures", "Figures");
-    const struct {
-        const char *name, *unit;
-        enum number_style style;
-        figure_id id;
-    } rows[] = {
-        {"Occurs", "1/a", STYLE_FREQUENCY, x->frequency},
-        {"Does damage", "1/a", STYLE_FREQUENCY, x->damaging},
-        {"Mean damage when it does", currency, STYLE_MONEY, x->damage},
-        {"Risk", unit_per_year(j), STYLE_MONEY, x->risk},
-    };
-    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++)
-        pair_number(r, block_pair(r, b, rows[i].name), figure_value(j->figures, rows[i].id),
-                    rows[i].unit, rows[i].style, figure_name(j->figures, j->arena, rows[i].id));
-}
-
-/* The operating states that the hazard is a mean over. */
-static void states_table(struct job *j, const struct compiled *c)
-{
-    struct report *r = j->report;
-    const struct hazard_exports *x = c->exports;
-    struct block *b = report_table(r, "states", "Operating states");
-    block_column(r, b, "state", "State", "", STYLE_PLAIN);
-    block_column(r, b, "share", "Share of time", "", STYLE_PROBABILITY);
-    block_column(r, b, "frequency", "Occurs", "1/a", STYLE_FREQUENCY)->keep = 1;
-    block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 2;
-    block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
-    for (size_t i = 0; i < x->n_states; i++) {
-        const struct hazard_state *s = &x->states[i];
-        const struct hazard_exports *y = s->unit ? s->unit->exports : NULL;
-        struct row *row = block_row(r, b);
-        row_text(r, row, s->name);
-        row_number(r, row, s->share, NULL);
-        for (int k = 0; !y && k < 3; k++)
-            row_empty(r, row);
-        if (!y)
-            continue;
-        number_cell(j, row, y->frequency);
-        number_cell(j, row, y->damaging);
-        number_cell(j, row, y->risk);
-    }
-}
-
-/* Whose event tree the table of ends shows, where there are several. */
-static const char *shown_state(const struct hazard_exports *x)
-{
-    for (size_t i = 0; i < x->n_states; i++)
-        if (x->states[i].unit &&
-            ((const struct hazard_exports *)x->states[i].unit->exports)->ends == x->ends)
-            return x->states[i].name;
-    return NULL;
-}
-
-static void part_states(struct job *j, const struct compiled *c)
-{
-    const struct hazard_exports *x = c->exports;
-    if (x->n_states == 0)
-        return;
-    states_table(j, c);
-    report_note(j->report, "states",
-                "The figures are means over the operating states; the event tree is that of %s, "
-                "which holds most of the time.",
-                shown_state(x));
-}
-
-static void part_figures(struct job *j, const struct compiled *c)
-{
-    if (c->n == 0)
-        return;
-    if (c->object->kind != KIND_HAZARD) {
-        figures_table(j, c);
-        return;
-    }
-    hazard_pairs(j, c);
-    outcomes_table(j, c);
-    part_states(j, c);
-    ends_table(j, c);
-    report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
+    for (figure_id i = c->first; i < c->first + c->n; i++)
+        if (!is_curve(figure_at(j->figures, i)))
+            figure_row(j, b, i, uncertain);
 }
 
 static bool has_figures(const struct object *o)
@@ -490,6 +297,22 @@ static ohmen_status compute(struct job *j, const struct object *o, const struct 
     return OHMEN_OK;
 }
 
+/* --- kinds --- */
+
+static ohmen_status show_figures(struct job *j, const struct object *o, const struct compiled *c,
+                                 ohmen_error *e)
+{
+    switch (o->kind) {
+    case KIND_ELEMENT: return show_element(j, o, c, e);
+    case KIND_SCHEME: return show_scheme(j, o, c, e);
+    case KIND_HAZARD: show_hazard(j, o, c); return OHMEN_OK;
+    default: break;
+    }
+    if (c && c->n)
+        show_figures_table(j, c);
+    return OHMEN_OK;
+}
+
 static ohmen_status run_show(struct job *j, void *ctx, ohmen_error *e)
 {
     const struct compiled *c;
@@ -503,16 +326,13 @@ static ohmen_status run_show(struct job *j, void *ctx, ohmen_error *e)
     status = compute(j, o, &c, &why, e);
     if (status != OHMEN_OK)
         return status;
-    const struct node *doc = object_document(j->arena, o);
-    part_object(j, o, doc);
-    if (o->kind == KIND_HAZARD) {
-        part_response(j, doc, c ? c->exports : NULL);
-        part_damage(j, doc);
-    }
-    if (c)
-        part_figures(j, c);
+    part_object(j, o, object_document(j->arena, o));
+    status = show_figures(j, o, c, e);
+    if (status != OHMEN_OK)
+        return status;
     if (why)
         report_note(j->report, "no-figures", "No figures: %s.", why);
+    part_not_computed(j);
     part_users(j, o);
     return OHMEN_OK;
 }

@@ -62,6 +62,7 @@ void work_import_tests(Suite *suite);
 void work_journal_tests(Suite *suite);
 void work_error_tests(Suite *suite);
 void work_round_tests(Suite *suite);
+void work_show_tests(Suite *suite);
 void work_bad_tests(Suite *suite);
 void work_protection_tests(Suite *suite);
 
