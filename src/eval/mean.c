@@ -4,9 +4,9 @@
  * (knot.c); any other gets what its rule makes of the means of its arguments, for which these
  * are put in place of the point values for a moment.
  *
- * HELD stands at the mean of its argument while means are taken, and so does all that it moves: such
- * nodes get other values for that time (`moved`), computed anew from there. What is certain apart
- * from that has its other value for a mean.
+ * HELD stands at the mean of its argument while means are taken, and so does all that it moves:
+ * such nodes get other values for that time (`moved`), computed anew from there. What is certain
+ * apart from that has its other value for a mean.
  *
  * Owns the means of curved nodes. Those of a DIAGRAM, which has many, lie in the results of the
  * evaluation, and its mean is their place, as its value is. Invariant: outside means_update the

@@ -186,8 +186,8 @@ START_TEST(own_rates_alone)
 }
 END_TEST
 
-/* Own part (1 - beta) u of two, the shock beta u, beta uncertain too; a rate of its own that demands
- * end; a plain curved number; something that leaves failed, linear. */
+/* Own part (1 - beta) u of two, the shock beta u, beta uncertain too; a rate of its own that
+ * demands end; a plain curved number; something that leaves failed, linear. */
 static node_id common_cause(const struct setting *s)
 {
     struct graph *g = s->w->g;
