@@ -235,7 +235,7 @@ static void add_alternative(struct worth *x, struct alternative *alt, const stru
     alt->net = compiled_add(b, PROPERTY_NET, alt->name, NULL, net, NULL, NULL);
     if (costs_something(x, alt))
         alt->ratio = compiled_add(b, PROPERTY_RATIO, alt->name, NULL,
-                                  graph_op2(g, OP_RATIO, benefit, cost), NULL, NULL);
+                                  ratio_of_means(b, benefit, cost), NULL, NULL);
 }
 
 void worth_compile(struct figures *f, struct weighing *w, const struct variant *base,

@@ -25,8 +25,9 @@ static const size_t last_level[3] = {0, SPREAD_LEVELS - 1, 2};
 #define NEAR 1e-3
 
 /* A pair of points of less weight, of 1 in the middle, is left out: z1^2 + z2^2 > 12^2, further
- * out than either rule goes. */
+ * out than either rule goes. Probabilities are at most 1, and so need not go that far: 8.5^2. */
 #define LEAST_WEIGHT 5.4e-32
+#define LEAST_OF_PROBABILITIES 2e-16
 
 #define NO_INPUT UINT32_MAX
 
@@ -192,7 +193,8 @@ static bool add_pair(struct knots *k, size_t first, size_t i, size_t j)
     double weight = a->weight[i] * b->weight[j];
     k->x.at[first] = a->x[i];
     k->x.at[1 - first] = b->x[j];
-    return weight < LEAST_WEIGHT || add_point(k, weight, k->mean.at);
+    double least = k->blend ? LEAST_OF_PROBABILITIES : LEAST_WEIGHT;
+    return weight < least || add_point(k, weight, k->mean.at);
 }
 
 /* Is neither of the two inputs discrete? Then there are two stages for each level. */

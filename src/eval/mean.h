@@ -33,11 +33,12 @@
  * and quantile are smooth, mostly 1e-12. One input, steps down to 1/512: 2e-6 at a kink (min, max,
  * a triangular input), 4e-4 of the height of a jump (lookup). Two inputs, steps down to 1/4: 1e-3
  * at a kink; where the last two are further apart than 1e-3, as at most jumps, the knot is
- * sampled as if it had more inputs. Pairs of points with z1^2 + z2^2 > 144 are left out.
+ * sampled as if it had more inputs. Pairs of points with z1^2 + z2^2 > 144 (of a
+ * DIAGRAM: 72) are left out.
  *
  * What a sample reaches: for moderate spread the printed error holds (95 % intervals of Student's t
  * with 15 degrees of freedom hold the mean in 94 % of cases). It is too small where the mean hangs
- * on what 512 points hardly meet: products of several inputs with error factors of 3 and more that
+ * on what 128 points hardly meet: products of several inputs with error factors of 3 and more that
  * enter twice, or combinations of atoms with a probability below 1e-3.
  *
  * Invariant: the same graph and names give the same bytes, whatever else the graph holds. Names
@@ -48,7 +49,7 @@
 #include "eval/eval.h"
 
 #define MEAN_SETS 16
-#define MEAN_STRATA 32
+#define MEAN_STRATA 8
 
 /* What the graph does not know of its inputs; `input` is the number of graph_input. */
 struct mean_source {

@@ -28,6 +28,12 @@ node_id compile_const(struct building *b, double value, struct dim d, const char
     return n;
 }
 
+node_id ratio_of_means(struct building *b, node_id x, node_id y)
+{
+    struct graph *g = b->figures->graph;
+    return graph_op2(g, OP_RATIO, graph_op1(g, OP_HELD, x), graph_op1(g, OP_HELD, y));
+}
+
 static node_id compile_call(struct building *b, enum graph_op op, const struct expr *e)
 {
     node_id *args = NEW_ARRAY(b->figures->arena, e->n, node_id);

@@ -69,6 +69,9 @@ void compile_frequency_unit(struct figures *f, const struct variant *v, const st
 /* Nodes. */
 node_id compile_const(struct building *b, double value, struct dim d, const char *text);
 node_id compile_expr(struct building *b, const struct expr *e);
+/* x / y of the means of both over what is unknown, and 0 where x is 0: what one case of many costs
+ * on average, so that frequency times damage is risk. */
+node_id ratio_of_means(struct building *b, node_id x, node_id y);
 /* An expression, or the mean of a distribution as an input. */
 node_id compile_quantity(struct building *b, const struct quantity *q);
 /* How a quantity reads: its canonical text, or that of the distribution. */

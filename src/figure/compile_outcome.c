@@ -153,7 +153,7 @@ static void add_damage_and_risk(struct tree *t, size_t k, const struct items *pl
     if (plain->timed) {
         node_id hazard = figure_at(b->figures, x->frequency)->node;
         risk = graph_op2(g, OP_MULTIPLY, hazard, expected_damage(t, k, plain));
-        damage = graph_op2(g, OP_RATIO, risk, f);
+        damage = ratio_of_means(b, risk, f);
     } else {
         damage = sum_of(t, plain->n, plain->nodes, dim_money);
         risk = graph_op2(g, OP_MULTIPLY, f, damage);
@@ -192,7 +192,6 @@ static void compile_sums(struct tree *t)
 {
     struct building *b = t->building;
     struct hazard_exports *x = t->exports;
-    struct graph *g = b->figures->graph;
     node_id *risks = NEW_ARRAY(t->arena, x->n_outcomes, node_id);
     node_id *frequencies = NEW_ARRAY(t->arena, x->n_outcomes, node_id);
     size_t n = 0;
@@ -206,8 +205,8 @@ static void compile_sums(struct tree *t)
     node_id risk = sum_of(t, n, risks, dim_money_rate);
     x->damaging = compiled_add(b, PROPERTY_DAMAGING, NULL, NULL, damaging, NULL, NULL);
     x->risk = compiled_add(b, PROPERTY_RISK, NULL, NULL, risk, NULL, NULL);
-    x->damage = compiled_add(b, PROPERTY_DAMAGE, NULL, NULL, graph_op2(g, OP_RATIO, risk, damaging),
-                             NULL, NULL);
+    x->damage =
+        compiled_add(b, PROPERTY_DAMAGE, NULL, NULL, ratio_of_means(b, risk, damaging), NULL, NULL);
 }
 
 void compile_outcomes(struct tree *t)

@@ -312,18 +312,17 @@ ohmen_status compile_mean_frequency(struct figures *f, const struct variant *v,
 static void add_outcome(struct mixing *m, size_t k, bool same)
 {
     struct hazard_exports *x = m->exports;
-    struct graph *g = m->f->graph;
     const char *key = m->hazard->outcomes.keys[k];
     const figure_id *p = gather_outcome(m, offsetof(struct hazard_exports, probability), key);
     const figure_id *f = gather_outcome(m, offsetof(struct hazard_exports, frequency_of), key);
     const figure_id *r = gather_outcome(m, offsetof(struct hazard_exports, risk_of), key);
     node_id often = weighted(m, f, dim_frequency), risk = weighted(m, r, dim_money_rate);
     node_id all = figure_at(m->f, x->frequency)->node;
-    node_id share = same ? weighted(m, p, dim_number) : graph_op2(g, OP_RATIO, often, all);
+    node_id share = same ? weighted(m, p, dim_number) : ratio_of_means(&m->b, often, all);
     x->probability[k] = compiled_add(&m->b, PROPERTY_PROBABILITY, key, NULL, share, NULL, NULL);
     x->frequency_of[k] = compiled_add(&m->b, PROPERTY_FREQUENCY, key, NULL, often, NULL, NULL);
     x->damage_of[k] = compiled_add(&m->b, PROPERTY_DAMAGE, key, NULL,
-                                   graph_op2(g, OP_RATIO, risk, often), NULL, NULL);
+                                   ratio_of_means(&m->b, risk, often), NULL, NULL);
     x->risk_of[k] = compiled_add(&m->b, PROPERTY_RISK, key, NULL, risk, NULL, NULL);
 }
 
@@ -336,7 +335,7 @@ static void add_sums(struct mixing *m)
     x->damaging = compiled_add(&m->b, PROPERTY_DAMAGING, NULL, NULL, damaging, NULL, NULL);
     x->risk = compiled_add(&m->b, PROPERTY_RISK, NULL, NULL, risk, NULL, NULL);
     x->damage = compiled_add(&m->b, PROPERTY_DAMAGE, NULL, NULL,
-                             graph_op2(m->f->graph, OP_RATIO, risk, damaging), NULL, NULL);
+                             ratio_of_means(&m->b, risk, damaging), NULL, NULL);
 }
 
 /* Risk by year, where it is one of each year in some combination. */

@@ -348,13 +348,21 @@ static void write_lookup(struct writing *w, node_id n)
     text_byte(w->out, ')');
 }
 
+/* The parts of a ratio are taken at their means as a matter of course: see docs/figures.md. */
+static node_id part_of_ratio(const struct graph *g, node_id n)
+{
+    return graph_at(g, n)->op == OP_HELD ? graph_args(g, n)[0] : n;
+}
+
 static void write_call(struct writing *w, node_id n, const struct graph_op_info *op)
 {
-    const node_id *args = graph_args(w->f->graph, n);
+    const struct graph *g = w->f->graph;
+    const node_id *args = graph_args(g, n);
+    bool ratio = graph_at(g, n)->op == OP_RATIO;
     text_printf(w->out, "%s(", op->symbol);
-    for (uint32_t i = 0; i < graph_at(w->f->graph, n)->n; i++) {
+    for (uint32_t i = 0; i < graph_at(g, n)->n; i++) {
         text_add(w->out, i ? "; " : "");
-        write_node(w, args[i], WEAKEST);
+        write_node(w, ratio ? part_of_ratio(g, args[i]) : args[i], WEAKEST);
     }
     text_byte(w->out, ')');
 }

@@ -25,7 +25,7 @@ static node_id weighted_mean(struct tree *t, size_t end)
                                 t->in_window[s->of_year[y] * t->ends.n + end]);
     }
     struct span all = {{s->years, s->windows.at}, true, s->years, of_year};
-    return graph_op2(g, OP_RATIO, span_mean(b, &all, products), t->frequency->mean);
+    return ratio_of_means(b, span_mean(b, &all, products), t->frequency->mean);
 }
 
 node_id yearly_mean_end(struct tree *t, size_t end)
