@@ -264,7 +264,8 @@ static bool must_not_be_negative(enum property p)
 {
     return p == PROPERTY_FREQUENCY || p == PROPERTY_DAMAGE || p == PROPERTY_RATE ||
            p == PROPERTY_UNDETECTED || p == PROPERTY_DETECTED || p == PROPERTY_REPAIR ||
-           p == PROPERTY_REVEALED || p == PROPERTY_INVEST || p == PROPERTY_RUNNING;
+           p == PROPERTY_REVEALED || p == PROPERTY_INVEST || p == PROPERTY_RUNNING ||
+           p == PROPERTY_TEST_COSTS;
 }
 
 /* What an expression of names gives can only be seen here. */
