@@ -122,7 +122,7 @@ const struct command commands[] = {
      .run = command_weigh},
     {"test-interval",
      JOB_DECIDE,
-     {"ELEMENT", 1, 1, "an element with a routine test, such as MN-21"},
+     {"ELEMENT", 1, 1, "an element with a routine test, such as VH-GAS2"},
      .options = READING,
      .brief = "how often to test an element, by cost",
      .text = "Finds the interval between routine tests that costs least, tests and the risk of "
@@ -131,7 +131,7 @@ const struct command commands[] = {
              "whole cycles of tests.\n"
              "What one of them is made of: ohmen explain \"HAZARD.risk@[ELEMENT.test.every=2 a, "
              "whole cycles]\".",
-     .example = "ohmen -r skerry.ohmen test-interval MN-21",
+     .example = "ohmen -r skerry.ohmen test-interval VH-GAS2",
      .run = command_test_interval},
     {"explain",
      JOB_PROVE,

@@ -11,6 +11,30 @@
 
 #define CYCLES ", whole cycles" /* ends the name of a change */
 
+/* --- elements --- */
+
+static ohmen_status unknown_element(const struct figures *f, const char *id, ohmen_error *e)
+{
+    const struct objects *all = &f->base->of[KIND_ELEMENT];
+    struct nearest near;
+    nearest_init(&near, id);
+    for (size_t i = 0; i < all->n; i++)
+        nearest_offer(&near, all->at[i]->id);
+    return error_set(e, OHMEN_UNKNOWN, "there is no element \"%s\"%s", id,
+                     nearest_hint(f->arena, &near));
+}
+
+/* There must be such an element, and it must have a test. */
+static ohmen_status check_element(const struct figures *f, const char *id, ohmen_error *e)
+{
+    const struct element *x = model_get(f->base, KIND_ELEMENT, id);
+    if (!x)
+        return unknown_element(f, id, e);
+    if (!x->test)
+        return error_set(e, OHMEN_COMPUTE, "the element \"%s\" has no \"test\"", id);
+    return OHMEN_OK;
+}
+
 /* --- intervals --- */
 
 /* Round ones, in rising order. */
@@ -232,17 +256,6 @@ static ohmen_status no_hazard(const struct interval_search *s, ohmen_error *e)
                      s->element->id);
 }
 
-static ohmen_status unknown_element(const struct figures *f, const char *id, ohmen_error *e)
-{
-    const struct objects *all = &f->base->of[KIND_ELEMENT];
-    struct nearest near;
-    nearest_init(&near, id);
-    for (size_t i = 0; i < all->n; i++)
-        nearest_offer(&near, all->at[i]->id);
-    return error_set(e, OHMEN_UNKNOWN, "there is no element \"%s\"%s", id,
-                     nearest_hint(f->arena, &near));
-}
-
 static ohmen_status compile_all(struct interval_search *s, ohmen_error *e)
 {
     choose_intervals(s);
@@ -261,14 +274,12 @@ static ohmen_status compile_all(struct interval_search *s, ohmen_error *e)
 ohmen_status interval_compile(const struct figures *f, const char *element,
                               struct interval_search **out, ohmen_error *e)
 {
-    const struct element *x = model_get(f->base, KIND_ELEMENT, element);
-    if (!x)
-        return unknown_element(f, element, e);
-    if (!x->test)
-        return error_set(e, OHMEN_COMPUTE, "the element \"%s\" has no \"test\"", element);
+    ohmen_status status = check_element(f, element, e);
+    if (status != OHMEN_OK)
+        return status;
     struct interval_search *s = NEW(f->arena, struct interval_search);
     s->element = model_find(f->base, element);
-    ohmen_status status = cycle_figures(f, &s->figures, e);
+    status = cycle_figures(f, &s->figures, e);
     if (status == OHMEN_OK)
         status = compile_all(s, e);
     if (status == OHMEN_OK)
@@ -333,18 +344,25 @@ bool interval_is_named(const char *figure)
     return false;
 }
 
+static ohmen_status make_up(struct figures *f, const char *element, const char *every,
+                            ohmen_error *e)
+{
+    const struct variant *made;
+    ohmen_status status = check_element(f, element, e);
+    return status == OHMEN_OK ? variant_every(f, element, every, &made, e) : status;
+}
+
 ohmen_status interval_find(const struct figures *of, const char *name, struct figures **figures,
                            figure_id *out, ohmen_error *e)
 {
     struct figures *f = NULL;
     ohmen_status status = cycle_figures(of, &f, e);
     for (const char *p = name; status == OHMEN_OK && (p = strchr(p, '[')) != NULL; p++) {
-        const struct variant *made;
         const char *every;
         size_t element, length;
         if (cut_change(p + 1, &element, &every, &length))
-            status = variant_every(f, arena_strn(f->arena, p + 1, element),
-                                   arena_strn(f->arena, every, length), &made, e);
+            status = make_up(f, arena_strn(f->arena, p + 1, element),
+                             arena_strn(f->arena, every, length), e);
     }
     if (status == OHMEN_OK)
         status = figures_find(f, name, out, e);

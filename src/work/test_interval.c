@@ -72,6 +72,7 @@ static void interval_row(struct job *j, struct block *b, const struct interval_s
     if (counts_trips(s))
         row_number(r, row, t->trips, NULL);
     row_number(r, row, t->total, NULL);
+    row_number(r, row, t->total - best(s)->total, NULL);
     row_text(r, row, remark(s, i));
 }
 
@@ -88,6 +89,7 @@ static void intervals_table(struct job *j, const struct interval_search *s)
     if (counts_trips(s))
         block_column(r, b, "trips", "Risk of unwanted trips", unit, STYLE_MONEY)->keep = 3;
     block_column(r, b, "total", "Together", unit, STYLE_MONEY);
+    block_column(r, b, "above", "Above the least", unit, STYLE_MONEY)->keep = 2;
     block_column(r, b, "remark", "Remark", "", STYLE_PLAIN)->keep = 4;
     for (size_t i = 0; i < s->tried.n; i++)
         interval_row(j, b, s, i);
