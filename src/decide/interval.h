@@ -39,7 +39,7 @@ struct tried_interval {
     const struct variant *variant;
     const struct compiled **hazards; /* in the order of interval_search.hazards */
     figure_id tests;             /* cost of the tests per year; FIGURE_NONE: they cost nothing */
-    double costs, faults, trips; /* money per year: tests; risk of hazards without unwanted(...)
+    double costs, faults, trips; /* money per year: tests; risk of hazards without unwanted()
                                         and with it. Set by interval_rank, as is: */
     double total;
 };
@@ -58,8 +58,8 @@ struct interval_search {
     ARRAY(struct interval_hazard) hazards;    /* that the interval changes, in byte order */
     ARRAY(struct interval_left_out) left_out; /* hazards that cannot be evaluated */
     ARRAY(struct tried_interval) tried;       /* in rising order */
-    size_t today, best, near_from, near_to;   /* indices; the last three set by interval_rank:
-                                                  all from near_from to near_to are near the least */
+    size_t today, best, near_from, near_to;   /* indices; the last three by interval_rank:
+                                                  near_from to near_to are near the least */
 };
 
 /* Compiles every interval. figures: of the register, whose perspective and date are taken.
