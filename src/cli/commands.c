@@ -133,6 +133,19 @@ const struct command commands[] = {
              "over every hazard that one of them reaches.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
+    {"test-interval",
+     JOB_DECIDE,
+     {"ELEMENT", 1, 1, "an element with a routine test, such as VH-GAS2"},
+     .options = READING,
+     .brief = "how often to test an element, by cost",
+     .text = "Finds the interval between routine tests that costs least, tests and the risk of "
+             "all hazards together, and shows what the others cost. Intervals are round ones, "
+             "from an eighth of the present one to 32 times it; risks are averages over "
+             "whole cycles of tests.\n"
+             "What one of them is made of: ohmen explain \"HAZARD.risk@[ELEMENT.test.every=2 a, "
+             "whole cycles]\".",
+     .example = "ohmen -r skerry.ohmen test-interval VH-GAS2",
+     .run = command_test_interval},
     {"explain",
      JOB_PROVE,
      {"FIGURE", 1, 1, "the name of a figure, such as H-VH-BUS1.risk"},

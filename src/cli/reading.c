@@ -127,6 +127,13 @@ static ohmen_status make_weigh(ohmen_register *r, const struct args *args, ohmen
     return ohmen_weigh(r, &query, operand(args), out, e);
 }
 
+static ohmen_status make_test_interval(ohmen_register *r, const struct args *args,
+                                       ohmen_report **out, ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_test_interval(r, &query, operand(args), out, e);
+}
+
 static ohmen_status make_explain(ohmen_register *r, const struct args *args, ohmen_report **out,
                                  ohmen_error *e)
 {
@@ -180,6 +187,11 @@ ohmen_status command_report(const struct call *call, ohmen_error *e)
 ohmen_status command_weigh(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_weigh, e);
+}
+
+ohmen_status command_test_interval(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_test_interval, e);
 }
 
 ohmen_status command_explain(const struct call *call, ohmen_error *e)

@@ -277,6 +277,33 @@ static void add_course(struct building *b, const struct making *m, node_id stand
     out->course = compiled_add(b, PROPERTY_COURSE, m->q1, m->q2, out->node, NULL, NULL);
 }
 
+static const struct diagram *variable_itself(struct figures *f)
+{
+    struct diagram_builder *d = diagram_builder_new(f->arena);
+    bfun fails = diagram_variable(d, 0);
+    return diagram_freeze(f->arena, d, 1, &fails);
+}
+
+/* Failures that no test finds: the mean of their course over the horizon. In the long run alone
+ * they would be certain, where demands do not show them either. */
+static node_id unfound(struct building *b, const struct making *m, node_id untested)
+{
+    struct figures *f = b->figures;
+    const char *q = m->q1 ? arena_printf(f->arena, "%s.unfound", m->q1) : "unfound";
+    struct course when = {m->when.from, INFINITY, 0, m->when.born, true};
+    struct window horizon = {0, horizon_length(f->base->settings)};
+    struct windows over = {1, &horizon};
+    node_id none = compile_const(b, 0, dim_number, NULL);
+    node_id args[5] = {none, rate_or_zero(b, NODE_NONE), rate_or_zero(b, m->revealed), none,
+                       untested};
+    node_id course = graph_course(f->graph, &when, args);
+    compiled_add(b, PROPERTY_COURSE, q, m->q2, course, NULL, NULL);
+    node_id d = graph_diagram_over(f->graph, variable_itself(f), 1, &course, &over);
+    node_id mean = graph_pick_in(f->graph, d, 0, 0);
+    compiled_add(b, PROPERTY_STANDING, q, m->q2, mean, NULL, NULL);
+    return mean;
+}
+
 static node_id standing_of(struct building *b, const struct making *m, struct rates *r)
 {
     struct graph *g = b->figures->graph;
@@ -284,18 +311,14 @@ static node_id standing_of(struct building *b, const struct making *m, struct ra
     for (size_t i = 0; i < m->n_standing; i++)
         standing = either(g, standing, m->standing[i]);
     bool settled = !m->dated && m->revealed != NODE_NONE; /* nothing tells when it was sound */
-    if ((b->figures->base->settings->steady || settled) && r->untested != NODE_NONE) {
-        standing = either(g, standing, long_run(b, r->untested, m->revealed));
-        r->untested = NODE_NONE;
-    }
+    bool cycles = b->figures->whole_cycles && !settled;
+    bool steady = b->figures->base->settings->steady || settled || cycles;
+    if (!steady || r->untested == NODE_NONE)
+        return standing;
+    standing = either(g, standing,
+                      cycles ? unfound(b, m, r->untested) : long_run(b, r->untested, m->revealed));
+    r->untested = NODE_NONE;
     return standing;
-}
-
-static const struct diagram *variable_itself(struct figures *f)
-{
-    struct diagram_builder *d = diagram_builder_new(f->arena);
-    bfun fails = diagram_variable(d, 0);
-    return diagram_freeze(f->arena, d, 1, &fails);
 }
 
 /* The mean of a course over its own span, and its value in each year. */
@@ -404,6 +427,18 @@ static struct making making_of(struct element_building *m)
     return k;
 }
 
+/* Behind all else of the element, whose unknowns keep their numbers. */
+static void add_test_costs(const struct element_building *m)
+{
+    const struct test *t = m->x->test;
+    if (!t || !t->costs)
+        return;
+    node_id costs = compile_quantity(m->b, t->costs), every = compile_quantity(m->b, t->every);
+    node_id n = graph_op2(m->b->figures->graph, OP_DIVIDE, costs, every);
+    compiled_add(m->b, PROPERTY_TEST_COSTS, NULL, NULL, n, first_source(t->source, m->x->source),
+                 NULL);
+}
+
 static ohmen_status nothing_known(const struct object *o, ohmen_error *e)
 {
     return error_set(
@@ -430,6 +465,7 @@ ohmen_status compile_element(struct figures *f, const struct variant *v, const s
     struct making k = making_of(&m);
     x->whole = compile_behaviour(&b, &k, &x->span);
     b.unit->main = x->whole.fails;
+    add_test_costs(&m);
     compiled_end(&b);
     *out = b.unit;
     return OHMEN_OK;

@@ -37,6 +37,7 @@
     X(UNTESTED, "untested", "rate of undetected failures that no routine test finds")              \
     X(REVEALED, "revealed", "how often demands and operations show whether it works")              \
     X(LEFT, "left-failed", "probability that a routine test leaves it failed")                     \
+    X(TEST_COSTS, "test-costs", "cost of the routine tests per year")                              \
     X(STANDING, "standing", "probability of failure that does not change with time")               \
     X(COURSE, "course", "probability of failure over time: here at the start of the horizon")      \
     X(BETA, "beta", "share of failures with a common cause")                                       \
@@ -208,6 +209,8 @@ struct figures {
     const char *perspective;        /* NULL: every category */
     const struct names *categories; /* of the perspective; NULL: every category */
     day date;                       /* of evaluation: evidence accrues until then */
+    bool whole_cycles; /* averages are over whole cycles of tests wherever they lie, and over the
+                          horizon for what no test finds; set behind figures_new */
     struct graph *graph;
     struct eval *eval;
     struct means *means;

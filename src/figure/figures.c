@@ -268,7 +268,7 @@ static bool must_not_be_negative(enum property p)
     return p == PROPERTY_FREQUENCY || p == PROPERTY_DAMAGE || p == PROPERTY_RATE ||
            p == PROPERTY_UNDETECTED || p == PROPERTY_DETECTED || p == PROPERTY_REPAIR ||
            p == PROPERTY_UNWANTED || p == PROPERTY_REVEALED || p == PROPERTY_INVEST ||
-           p == PROPERTY_RUNNING;
+           p == PROPERTY_RUNNING || p == PROPERTY_TEST_COSTS;
 }
 
 /* What is certain may come out as more than 1 by the rounding of an average over time. */

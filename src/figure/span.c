@@ -114,7 +114,8 @@ struct span span_of(struct figures *f, size_t n, const struct behaviour *const *
     struct span none = {.years = horizon_length(f->base->settings)};
     if (!timed)
         return none;
-    double cycle = dated && !f->base->settings->steady ? 0 : common_cycle(n, parts);
+    bool years_matter = dated && !f->base->settings->steady && !f->whole_cycles;
+    double cycle = years_matter ? 0 : common_cycle(n, parts);
     if (cycle == 0)
         return years(f, n, parts);
     struct window *whole = NEW(f->arena, struct window);

@@ -7,8 +7,8 @@
  *                    start of the horizon: the long-run average
  *   something dated  (a date of a test, or a part that no test ever finds) each year of the horizon
  *                    is a window; years that repeat an earlier one share its window
- *   steady           (the register asks for it) one window of a common cycle behind all first
- *                    tests, dates kept as phases
+ *   steady           (the register or figures.whole_cycles asks for it) one window of a common
+ *                    cycle behind all first tests, dates kept as phases
  * Where no common cycle within SPAN_CYCLE years exists, years of the horizon are the windows. */
 #ifndef FIGURE_SPAN_H
 #define FIGURE_SPAN_H

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The derivation of a figure: formula by formula, down to inputs with their source. */
+#include "decide/interval.h"
 #include "work/work.h"
 
 struct explaining {
@@ -137,7 +138,10 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     const struct explain_request *q = ctx;
     figure_id id = FIGURE_NONE;
     ohmen_status status = job_load_figures(j, e);
-    if (status == OHMEN_OK)
+    bool over_cycles = interval_is_named(q->figure);
+    if (status == OHMEN_OK && over_cycles)
+        status = interval_find(j->figures, q->figure, &j->figures, &id, e);
+    else if (status == OHMEN_OK)
         status = weigh_find(j->figures, q->figure, &id, e);
     if (status == OHMEN_OK)
         status = figures_evaluate(j->figures, e);
@@ -145,6 +149,11 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
         return status;
     struct explaining x = {.job = j, .depth = q->depth};
     figure_note(j, id);
+    if (over_cycles)
+        report_note(
+            j->report, "whole-cycles",
+            "All figures here are averages over whole cycles of tests, whatever their variant, "
+            "as `ohmen test-interval` takes them.");
     collect(&x, id);
     explain_table(&x);
     method_note(j, id);
