@@ -270,9 +270,14 @@ static node_id standing_of(struct building *b, const struct making *m, struct ra
 
 static const struct diagram *variable_itself(struct figures *f)
 {
-    struct diagram_builder *d = diagram_builder_new(f->arena);
-    bfun fails = diagram_variable(d, 0);
-    return diagram_freeze(f->arena, d, 1, &fails);
+    if (!f->itself) {
+        struct arena *scratch = arena_child(f->arena);
+        struct diagram_builder *d = diagram_builder_new(scratch);
+        bfun fails = diagram_variable(d, 0);
+        f->itself = diagram_freeze(f->arena, d, 1, &fails);
+        arena_free(scratch);
+    }
+    return f->itself;
 }
 
 /* The mean of a course over its own span, and its value in each year. */

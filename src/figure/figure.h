@@ -185,6 +185,7 @@ struct figures {
     ARRAY(const char *) input_names; /* "VH-51A#0": the same under all variants */
     ARRAY(figure_id) of_node;        /* first figure of a node */
     ARRAY(const char *) literals;    /* text of a CONST node, or NULL */
+    const struct diagram *itself;    /* of one variable: true when it is */
     uint32_t n_stated;               /* expressions that documents state, each a node of its own */
     unsigned depth;
 };

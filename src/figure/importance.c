@@ -211,6 +211,7 @@ void cut_sets_of_hazard(struct figures *f, struct arena *a, const struct compile
     struct wiring w;
     const struct diagram *d = hazard_uncleared(f, hazard, &w);
     cut_sets(f, a, hazard, d, &w, limit, out);
+    wiring_end(&w);
 }
 
 void cut_sets_of_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
@@ -221,4 +222,5 @@ void cut_sets_of_scheme(struct figures *f, struct arena *a, const struct compile
     wiring_order(&w, scheme->id);
     cut_sets(f, a, scheme, ((const struct scheme_exports *)scheme->exports)->diagram, &w, limit,
              out);
+    wiring_end(&w);
 }
