@@ -176,6 +176,7 @@ struct figures {
     ARRAY(struct figure) list;
     ARRAY(struct compiled *) units;
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
+    struct text key;               /* scratch: one of these keys */
     struct strmap variants;        /* "A+B" -> struct variant */
     struct strmap made_up;         /* "[NAME]" -> struct change */
     struct strmap used_by;         /* id -> struct objects: what refers to it, in the base */
