@@ -9,7 +9,7 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { ALIGN = 16, FIRST_CHUNK = 4096, LARGEST_CHUNK = 1 << 20 };
+enum { ALIGN = 16, FIRST_CHUNK = 4096, LARGEST_CHUNK = 1 << 20, BRIEF = 128 };
 
 struct chunk {
     struct chunk *next;
@@ -205,11 +205,15 @@ char *arena_vprintf(struct arena *a, const char *format, va_list args)
 {
     va_list again;
     va_copy(again, args);
-    int n = vsnprintf(NULL, 0, format, args);
+    char brief[BRIEF];
+    int n = vsnprintf(brief, sizeof brief, format, args);
     if (n < 0)
         arena_exhausted(a); /* longer than INT_MAX, or a wide character without a form */
     char *s = arena_alloc(a, (size_t)n + 1);
-    vsnprintf(s, (size_t)n + 1, format, again);
+    if (n < BRIEF)
+        memcpy(s, brief, (size_t)n);
+    else
+        vsnprintf(s, (size_t)n + 1, format, again);
     va_end(again);
     return s;
 }

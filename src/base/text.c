@@ -47,11 +47,17 @@ void text_printf(struct text *t, const char *format, ...)
     va_list args, again;
     va_start(args, format);
     va_copy(again, args);
-    int n = vsnprintf(NULL, 0, format, args);
+    size_t room = t->cap - t->n;
+    int n = vsnprintf(room ? t->at + t->n : NULL, room, format, args);
+    bool fits = n >= 0 && (size_t)n < room;
+    if (room && !fits)
+        t->at[t->n] = 0; /* as it was, whatever happens now */
     if (n < 0)
         arena_exhausted(t->arena); /* longer than INT_MAX, or a wide character without a form */
-    t->at = array_room(t->arena, t->at, t->n, &t->cap, (size_t)n + 1, 1);
-    vsnprintf(t->at + t->n, (size_t)n + 1, format, again);
+    if (!fits) {
+        t->at = array_room(t->arena, t->at, t->n, &t->cap, (size_t)n + 1, 1);
+        vsnprintf(t->at + t->n, (size_t)n + 1, format, again);
+    }
     t->n += (size_t)n;
     va_end(again);
     va_end(args);
@@ -77,21 +83,22 @@ bool text_starts(const char *s, const char *prefix)
     return strncmp(s, prefix, strlen(prefix)) == 0;
 }
 
-/* FNV-1a, 64 bits. */
-static uint64_t hash_string(const char *s)
+/* FNV-1a of 64 bits, folded. */
+static uint32_t hash_string(const char *s)
 {
     uint64_t h = 14695981039346656037u;
     for (; *s; s++)
         h = (h ^ (unsigned char)*s) * 1099511628211u;
-    return h ^ h >> 29;
+    return (uint32_t)(h ^ h >> 32);
 }
 
-static uint32_t *find_slot(const struct strmap *m, const char *key)
+/* The slot of a key, or the free one where it would be. */
+static struct strmap_slot *find_slot(const struct strmap *m, const char *key, uint32_t hash)
 {
     size_t mask = m->n_slots - 1;
-    for (size_t i = hash_string(key) & mask;; i = (i + 1) & mask) {
-        uint32_t *slot = &m->slots[i];
-        if (*slot == 0 || text_equal(m->at[*slot - 1].key, key))
+    for (size_t i = hash & mask;; i = (i + 1) & mask) {
+        struct strmap_slot *slot = &m->slots[i];
+        if (slot->index == 0 || (slot->hash == hash && text_equal(m->at[slot->index - 1].key, key)))
             return slot;
     }
 }
@@ -100,35 +107,43 @@ void *strmap_get(const struct strmap *m, const char *key)
 {
     if (m->n == 0)
         return NULL;
-    uint32_t *slot = find_slot(m, key);
-    return *slot ? m->at[*slot - 1].value : NULL;
+    const struct strmap_slot *slot = find_slot(m, key, hash_string(key));
+    return slot->index ? m->at[slot->index - 1].value : NULL;
 }
 
 bool strmap_has(const struct strmap *m, const char *key)
 {
-    return m->n != 0 && *find_slot(m, key) != 0;
+    return m->n != 0 && find_slot(m, key, hash_string(key))->index != 0;
 }
 
 static void grow_slots(struct arena *a, struct strmap *m)
 {
-    size_t n_slots = m->n_slots ? m->n_slots * 2 : 16;
-    m->slots = NEW_ARRAY(a, n_slots, uint32_t); /* may jump: the map is whole till here */
+    const struct strmap_slot *old = m->slots;
+    size_t n_old = m->n_slots, n_slots = n_old ? n_old * 2 : 16;
+    m->slots = NEW_ARRAY(a, n_slots, struct strmap_slot); /* may jump: the map is whole till here */
     m->n_slots = n_slots;
-    for (size_t i = 0; i < m->n; i++)
-        *find_slot(m, m->at[i].key) = (uint32_t)(i + 1);
+    for (size_t k = 0; k < n_old; k++) {
+        size_t i = old[k].hash & (n_slots - 1);
+        if (old[k].index == 0)
+            continue;
+        while (m->slots[i].index)
+            i = (i + 1) & (n_slots - 1);
+        m->slots[i] = old[k];
+    }
 }
 
 void strmap_set(struct arena *a, struct strmap *m, const char *key, void *value)
 {
     if ((m->n + 1) * 2 > m->n_slots)
         grow_slots(a, m);
-    uint32_t *slot = find_slot(m, key);
-    if (*slot) {
-        m->at[*slot - 1].value = value;
+    uint32_t hash = hash_string(key);
+    struct strmap_slot *slot = find_slot(m, key, hash);
+    if (slot->index) {
+        m->at[slot->index - 1].value = value;
         return;
     }
     *array_push(a, m) = (struct strmap_pair){key, value};
-    *slot = (uint32_t)m->n;
+    *slot = (struct strmap_slot){(uint32_t)m->n, hash};
 }
 
 enum { LONGEST_NAME = 64 };

@@ -38,7 +38,10 @@ struct strmap {
         void *value;
     } *at;
     size_t n, cap;
-    uint32_t *slots; /* index + 1, or 0 */
+    struct strmap_slot {
+        uint32_t index; /* + 1, or 0 */
+        uint32_t hash;  /* of the key */
+    } *slots;
     size_t n_slots;
 };
 

@@ -39,7 +39,7 @@ void help_usage(FILE *to, const struct command *c)
     fputs(" [OPTION...]", to);
 }
 
-enum { OPTION_INDENT = 28, COMMAND_INDENT = 16, VARIABLE_INDENT = 26 };
+enum { OPTION_INDENT = 28, COMMAND_INDENT = 17, VARIABLE_INDENT = 26 };
 
 /* Fills up to the column where the explanation stands, on the next line if the name
  * is too long. */

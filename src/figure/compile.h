@@ -117,10 +117,13 @@ void element_instants(const struct figures *f, const struct element *x, struct m
 /* A common cause and its members. */
 ohmen_status compile_group(struct figures *f, const struct variant *v, const struct object *o,
                            struct compiled **out, ohmen_error *e);
+/* The diagram of one variable, which is its root. */
+const struct diagram *variable_itself(struct figures *f);
 struct behaviour compile_behaviour(struct building *b, const struct making *m, struct span *span);
 
 struct wiring;
-/* "No row clears the fault" as a function of failures alone: every function sees it. */
+/* "No row clears the fault" as a function of failures alone: every function sees it. The wiring
+ * is begun here. */
 const struct diagram *hazard_uncleared(struct figures *f, const struct compiled *hazard,
                                        struct wiring *w);
 
@@ -148,6 +151,7 @@ ohmen_status compile_consequences(struct figures *f, const struct variant *v,
 
 struct wiring {
     struct building under; /* where elements and common causes are looked up */
+    struct arena *scratch; /* of the builder and of all below that is no event */
     struct diagram_builder *builder;
     const struct rows *disables; /* of the hazard, or NULL */
     ARRAY(struct event) events;  /* by variable, in order */
@@ -157,8 +161,10 @@ struct wiring {
     unsigned depth;
     bool too_deep;
 };
+/* To be ended: then its functions are gone; events and frozen diagrams live with the figures. */
 void wiring_init(struct wiring *w, struct figures *f, const struct variant *v,
                  const struct rows *disables);
+void wiring_end(struct wiring *w);
 /* Gives every element below `id` its variable, depth first along the chain. */
 void wiring_order(struct wiring *w, const char *id);
 /* "works" as a function of the elements' failures. */

@@ -121,7 +121,7 @@ static void grow_question(struct tree *t, const struct branch *b, const struct s
     struct condition asked = {.id = b->if_works};
     yes.condition = add_condition(t, at->condition, asked, true);
     yes.path = arena_printf(t->arena, "%s/yes", at->path);
-    no.reached = diagram_and(d, at->reached, diagram_not(d, works));
+    no.reached = diagram_ite(d, works, BFUN_FALSE, at->reached);
     no.condition = add_condition(t, at->condition, asked, false);
     no.path = arena_printf(t->arena, "%s/no", at->path);
     grow(t, b->yes, yes);
@@ -207,7 +207,7 @@ static void grow_rows(struct tree *t)
             bfun clears = row_clears(t, row, key);
             at.reached = diagram_and(d, uncleared, clears);
             at.condition = add_condition(t, before, c, true);
-            uncleared = diagram_and(d, uncleared, diagram_not(d, clears));
+            uncleared = diagram_ite(d, clears, BFUN_FALSE, uncleared);
             before = add_condition(t, before, c, false);
         }
         grow(t, &row->then, at);
@@ -356,10 +356,12 @@ ohmen_status compile_hazard(struct figures *f, const struct variant *v, const st
     order_rows(&t);
     grow_rows(&t);
     const struct diagram *d = t.wiring.too_deep ? NULL : freeze(&t);
+    if (d)
+        add_diagram(&t, d);
+    wiring_end(&t.wiring);
     if (!d)
         return too_intertwined(&b, "the response of", o->id,
                                "its schemes need more than %u diagram nodes, or nest too deep", e);
-    add_diagram(&t, d);
     add_ends(&t);
     compile_outcomes(&t);
     yearly_risks(&t);
@@ -388,7 +390,7 @@ const struct diagram *hazard_uncleared(struct figures *f, const struct compiled 
             clears =
                 diagram_and(w->builder, clears,
                             wiring_trips(w, row_named(h, row->breaker_failure_of)->cleared_by));
-        uncleared = diagram_and(w->builder, uncleared, diagram_not(w->builder, clears));
+        uncleared = diagram_ite(w->builder, clears, BFUN_FALSE, uncleared);
     }
     return diagram_freeze(f->arena, w->builder, 1, &uncleared);
 }
@@ -426,11 +428,13 @@ ohmen_status compile_scheme(struct figures *f, const struct variant *v, const st
     wiring_order(&w, o->id);
     bfun fails = diagram_not(w.builder, wiring_works(&w, o->id));
     x->diagram = w.too_deep ? NULL : diagram_freeze(f->arena, w.builder, 1, &fails);
+    b.unit->exports = x;
+    if (x->diagram)
+        add_scheme(&b, x, &w);
+    wiring_end(&w);
     if (!x->diagram)
         return too_intertwined(&b, "the scheme", o->id,
                                "it needs more than %u diagram nodes, or nests too deep", e);
-    b.unit->exports = x;
-    add_scheme(&b, x, &w);
     compiled_end(&b);
     *out = b.unit;
     return OHMEN_OK;

@@ -27,13 +27,6 @@ static bool is_zero(const struct graph *g, node_id n)
     return graph_at(g, n)->op == OP_CONST && graph_at(g, n)->constant == 0;
 }
 
-static const struct diagram *variable_itself(struct figures *f)
-{
-    struct diagram_builder *d = diagram_builder_new(f->arena);
-    bfun fails = diagram_variable(d, 0);
-    return diagram_freeze(f->arena, d, 1, &fails);
-}
-
 /* The mean of a probability over time, in the windows of the element. */
 static node_id mean_of(struct building *b, node_id course, const struct span *s)
 {

@@ -277,11 +277,16 @@ static void add_course(struct building *b, const struct making *m, node_id stand
     out->course = compiled_add(b, PROPERTY_COURSE, m->q1, m->q2, out->node, NULL, NULL);
 }
 
-static const struct diagram *variable_itself(struct figures *f)
+const struct diagram *variable_itself(struct figures *f)
 {
-    struct diagram_builder *d = diagram_builder_new(f->arena);
-    bfun fails = diagram_variable(d, 0);
-    return diagram_freeze(f->arena, d, 1, &fails);
+    if (!f->itself) {
+        struct arena *scratch = arena_child(f->arena);
+        struct diagram_builder *d = diagram_builder_new(scratch);
+        bfun fails = diagram_variable(d, 0);
+        f->itself = diagram_freeze(f->arena, d, 1, &fails);
+        arena_free(scratch);
+    }
+    return f->itself;
 }
 
 /* Failures that no test finds: the mean of their course over the horizon. In the long run alone

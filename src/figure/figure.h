@@ -217,6 +217,7 @@ struct figures {
     ARRAY(struct figure) list;
     ARRAY(struct compiled *) units;
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */
+    struct text key;               /* scratch: one of these keys */
     struct strmap variants;        /* "A+B" -> struct variant */
     struct strmap made_up;         /* "[NAME]" -> struct change */
     struct strmap used_by;         /* id -> struct objects: what refers to it, in the base */
@@ -226,6 +227,7 @@ struct figures {
     ARRAY(const char *) input_names; /* "VH-51A#0": the same under all variants */
     ARRAY(figure_id) of_node;        /* first figure of a node */
     ARRAY(const char *) literals;    /* text of a CONST node, or NULL */
+    const struct diagram *itself;    /* of one variable: true when it is */
     uint32_t n_stated;               /* expressions that documents state, each a node of its own */
     unsigned depth;
 };

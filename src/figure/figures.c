@@ -67,6 +67,7 @@ ohmen_status figures_new(struct arena *a, const struct model *base, const char *
     f->arena = a;
     f->base = base;
     f->date = date;
+    text_init(&f->key, a);
     f->graph = graph_new(a);
     f->eval = eval_new(a, f->graph);
     struct mean_source *source = NEW(a, struct mean_source);
@@ -84,17 +85,23 @@ ohmen_status figures_new(struct arena *a, const struct model *base, const char *
 
 /* --- units --- */
 
+/* "ID", "ID@A+B", "ID/part@A+B"; readable until the next one. */
 static const char *compiled_key(struct figures *f, const char *id, const char *part,
                                 const struct variant *v)
 {
+    struct text *t = &f->key;
     if (v->n == 0 && !part)
         return id;
-    struct text t;
-    text_init(&t, f->arena);
-    text_printf(&t, part ? "%s/%s@" : "%s@", id, part);
-    for (size_t i = 0; i < v->n; i++)
-        text_printf(&t, "%s%s", i ? "+" : "", v->changes[i].name);
-    return text_str(&t);
+    t->n = 0;
+    text_add(t, id);
+    text_add(t, part ? "/" : "");
+    text_add(t, part ? part : "");
+    text_byte(t, '@');
+    for (size_t i = 0; i < v->n; i++) {
+        text_add(t, i ? "+" : "");
+        text_add(t, v->changes[i].name);
+    }
+    return text_str(t);
 }
 
 void compiled_begin(struct figures *f, const struct variant *projected, const struct object *o,
@@ -112,7 +119,8 @@ void compiled_begin_part(struct figures *f, const struct variant *projected, con
     u->first = (figure_id)f->list.n;
     u->section = graph_section_begin(f->graph, (uint32_t)f->units.n);
     *array_push(f->arena, &f->units) = u;
-    strmap_set(f->arena, &f->compiled_by_key, compiled_key(f, id, part, projected), u);
+    const char *key = compiled_key(f, id, part, projected);
+    strmap_set(f->arena, &f->compiled_by_key, key == id ? id : arena_str(f->arena, key), u);
     *b = (struct building){.figures = f, .variant = projected, .unit = u};
 }
 

@@ -245,6 +245,7 @@ void cut_sets_of_hazard(struct figures *f, struct arena *a, const struct compile
     hazard = in_one_state(hazard);
     const struct diagram *d = hazard_uncleared(f, hazard, &w);
     cut_sets(f, a, hazard, d, &w, limit, out);
+    wiring_end(&w);
 }
 
 static void scheme_wiring(struct figures *f, const struct compiled *scheme, struct wiring *w)
@@ -264,6 +265,7 @@ void cut_sets_of_scheme(struct figures *f, struct arena *a, const struct compile
     struct wiring w;
     scheme_wiring(f, scheme, &w);
     cut_sets(f, a, scheme, scheme_diagram(scheme), &w, limit, out);
+    wiring_end(&w);
 }
 
 /* --- single failures --- */
@@ -312,6 +314,7 @@ void single_failures_of_hazard(struct figures *f, struct arena *a, const struct 
     hazard = in_one_state(hazard);
     const struct diagram *d = hazard_uncleared(f, hazard, &w);
     single_failures(f, a, hazard, d, &w, out);
+    wiring_end(&w);
 }
 
 void single_failures_of_scheme(struct figures *f, struct arena *a, const struct compiled *scheme,
@@ -320,4 +323,5 @@ void single_failures_of_scheme(struct figures *f, struct arena *a, const struct 
     struct wiring w;
     scheme_wiring(f, scheme, &w);
     single_failures(f, a, scheme, scheme_diagram(scheme), &w, out);
+    wiring_end(&w);
 }

@@ -12,9 +12,16 @@
 void wiring_init(struct wiring *w, struct figures *f, const struct variant *v,
                  const struct rows *disables)
 {
+    struct arena *scratch = arena_child(f->arena);
     *w = (struct wiring){.under = {.figures = f, .variant = v},
-                         .builder = diagram_builder_new(f->arena),
+                         .scratch = scratch,
+                         .builder = diagram_builder_new(scratch),
                          .disables = disables};
+}
+
+void wiring_end(struct wiring *w)
+{
+    arena_free(w->scratch);
 }
 
 static struct arena *arena_of(const struct wiring *w)
@@ -33,7 +40,7 @@ uint32_t wiring_variable(struct wiring *w, const struct event *event)
     if (known)
         return (uint32_t)known - 1;
     *array_push(arena_of(w), &w->events) = *event;
-    strmap_set(arena_of(w), &w->index, event->name, (void *)(uintptr_t)w->events.n);
+    strmap_set(w->scratch, &w->index, event->name, (void *)(uintptr_t)w->events.n);
     return (uint32_t)w->events.n - 1;
 }
 
@@ -78,17 +85,17 @@ static bool is_hit(const struct shock *s, const char *element)
 void wiring_events(struct wiring *w, const char *id, struct events *out)
 {
     struct groups groups = {0};
-    *array_push(arena_of(w), out) = element_event(w, id);
+    *array_push(w->scratch, out) = element_event(w, id);
     groups_of(w->under.figures, model_of(w), id, &groups);
     for (size_t i = 0; i < groups.n; i++) {
         const struct group_exports *x = compiled_of(&w->under, groups.at[i]->id)->exports;
         for (size_t k = 0; k < x->n; k++)
             if (is_hit(&x->shocks[k], id))
-                *array_push(arena_of(w), out) = (struct event){
+                *array_push(w->scratch, out) = (struct event){
                     EVENT_SHOCK, groups.at[i]->id, x->shocks[k].name, x->shocks[k].fails};
     }
     if (is_disabled(w->disables, id))
-        *array_push(arena_of(w), out) = disabled_event(w, id);
+        *array_push(w->scratch, out) = disabled_event(w, id);
 }
 
 static bfun element_works(struct wiring *w, const char *id)
@@ -129,7 +136,7 @@ void wiring_order(struct wiring *w, const char *id)
     }
     if (strmap_has(&w->works, id))
         return;
-    strmap_set(arena_of(w), &w->works, id, NULL); /* seen; its function comes later */
+    strmap_set(w->scratch, &w->works, id, NULL); /* seen; its function comes later */
     if (w->depth >= SCHEME_DEPTH) {
         w->too_deep = true;
         return;
@@ -150,7 +157,7 @@ static bfun structure_function(struct wiring *w, const struct structure *s, bool
     case STRUCTURE_ABSENT: return BFUN_FALSE;
     case STRUCTURE_AT_LEAST: break;
     }
-    bfun *parts = NEW_ARRAY(arena_of(w), s->n, bfun);
+    bfun *parts = NEW_ARRAY(w->scratch, s->n, bfun);
     for (size_t i = 0; i < s->n; i++)
         parts[i] = structure_function(w, s->of[i], trips);
     return diagram_at_least(w->builder, s->k, s->n, parts);
@@ -167,7 +174,7 @@ static bfun function_of(struct wiring *w, const char *id, bool trips)
         return (bfun)(found - 1);
     bfun f = structure_function(w, ((const struct scheme *)o->data)->works, trips);
     if (f != DIAGRAM_FULL)
-        strmap_set(arena_of(w), known, id, (void *)((uintptr_t)f + 1));
+        strmap_set(w->scratch, known, id, (void *)((uintptr_t)f + 1));
     return f;
 }
 
@@ -220,6 +227,7 @@ const struct behaviour *const *wiring_behaviours(struct arena *a, const struct w
 static void element_text(struct text *t, const struct wording *w, const char *id, bool bare)
 {
     struct wiring events_only = {.under = {.figures = w->figures, .variant = w->variant},
+                                 .scratch = w->figures->arena,
                                  .disables = w->hazard ? &w->hazard->disables : NULL};
     struct events events = {0};
     wiring_events(&events_only, id, &events);

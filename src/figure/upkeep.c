@@ -88,13 +88,6 @@ static node_id course_today(struct figures *f, const struct upkeep *u)
     return changed_course(f, x, &c);
 }
 
-static const struct diagram *variable_itself(struct figures *f)
-{
-    struct diagram_builder *d = diagram_builder_new(f->arena);
-    bfun fails = diagram_variable(d, 0);
-    return diagram_freeze(f->arena, d, 1, &fails);
-}
-
 static void add_on_time(struct building *b, struct upkeep *u)
 {
     struct figures *f = b->figures;

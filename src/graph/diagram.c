@@ -12,7 +12,7 @@
 #include <assert.h>
 #include <string.h>
 
-enum { FIRST_SLOTS = 256, LARGEST_CACHE = 1 << 22 };
+enum { FIRST_SLOTS = 1024, LARGEST_CACHE = 1 << 22 };
 
 struct cached {
     bfun f, g, h, result; /* f = 0: empty, since if-then-else of false needs no cache */
@@ -56,17 +56,40 @@ static size_t find_slot(const struct diagram_builder *b, struct diagram_node n)
     return i;
 }
 
-/* Twice the slots; the cache grows with them and begins empty. */
+/* For a node that is in none. */
+static uint32_t *free_slot(const struct diagram_builder *b, struct diagram_node n)
+{
+    size_t i = hash3(n.variable, n.high, n.low) & (b->n_slots - 1);
+    while (b->slots[i])
+        i = (i + 1) & (b->n_slots - 1);
+    return &b->slots[i];
+}
+
+static struct cached *find_cached(const struct diagram_builder *b, bfun f, bfun g, bfun h)
+{
+    return &b->cache[hash3(f, g, h) & (b->n_cache - 1)];
+}
+
+static void grow_cache(struct diagram_builder *b)
+{
+    const struct cached *old = b->cache;
+    size_t n = b->n_cache;
+    b->n_cache *= 2;
+    b->cache = NEW_ARRAY(b->arena, b->n_cache, struct cached);
+    for (size_t i = 0; i < n; i++)
+        if (old[i].f)
+            *find_cached(b, old[i].f, old[i].g, old[i].h) = old[i];
+}
+
+/* Twice the slots, and as large a cache. */
 static void grow(struct diagram_builder *b)
 {
     b->n_slots *= 2;
     b->slots = NEW_ARRAY(b->arena, b->n_slots, uint32_t);
     for (size_t i = 0; i < b->nodes.n; i++)
-        b->slots[find_slot(b, b->nodes.at[i])] = (uint32_t)i + 2;
-    if (b->n_cache < LARGEST_CACHE) {
-        b->n_cache = b->n_slots;
-        b->cache = NEW_ARRAY(b->arena, b->n_cache, struct cached);
-    }
+        *free_slot(b, b->nodes.at[i]) = (uint32_t)i + 2;
+    if (b->n_cache < LARGEST_CACHE)
+        grow_cache(b);
 }
 
 /* The function "variable ? high : low". */
@@ -96,18 +119,22 @@ bfun diagram_variable(struct diagram_builder *b, uint32_t variable)
     return node_of(b, variable, BFUN_TRUE, BFUN_FALSE);
 }
 
-/* The variable on top; the constants are below all of them. */
-static uint32_t top(const struct diagram_builder *b, bfun f)
+/* A constant is below all variables. */
+static struct diagram_node node_at(const struct diagram_builder *b, bfun f)
 {
-    return f < 2 ? UINT32_MAX : b->nodes.at[f - 2].variable;
+    return f < 2 ? (struct diagram_node){UINT32_MAX, f, f} : b->nodes.at[f - 2];
 }
 
-static bfun arm(const struct diagram_builder *b, bfun f, uint32_t variable, bool high)
+static uint32_t least(uint32_t x, uint32_t y)
 {
-    if (top(b, f) != variable)
-        return f;
-    const struct diagram_node *n = &b->nodes.at[f - 2];
-    return high ? n->high : n->low;
+    return x < y ? x : y;
+}
+
+/* The arms of f by a variable at or above its top. */
+static void split(struct diagram_node *n, bfun f, uint32_t variable)
+{
+    if (n->variable != variable)
+        n->high = n->low = f;
 }
 
 /* The cases that need no work. */
@@ -147,20 +174,20 @@ static bfun ite(struct diagram_builder *b, bfun f, bfun g, bfun h)
     normalise(&f, &g, &h);
     if (is_trivial(f, g, h, &result))
         return result;
-    uint64_t hash = hash3(f, g, h);
-    const struct cached *c = &b->cache[hash & (b->n_cache - 1)];
+    const struct cached *c = find_cached(b, f, g, h);
     if (c->f == f && c->g == g && c->h == h)
         return c->result;
-    uint32_t v = top(b, f);
-    v = top(b, g) < v ? top(b, g) : v;
-    v = top(b, h) < v ? top(b, h) : v;
-    bfun high = ite(b, arm(b, f, v, true), arm(b, g, v, true), arm(b, h, v, true));
+    struct diagram_node nf = node_at(b, f), ng = node_at(b, g), nh = node_at(b, h);
+    uint32_t v = least(nf.variable, least(ng.variable, nh.variable));
+    split(&nf, f, v);
+    split(&ng, g, v);
+    split(&nh, h, v);
+    bfun high = ite(b, nf.high, ng.high, nh.high);
     if (high == DIAGRAM_FULL)
         return high;
-    bfun low = ite(b, arm(b, f, v, false), arm(b, g, v, false), arm(b, h, v, false));
-    result = node_of(b, v, high, low);
+    result = node_of(b, v, high, ite(b, nf.low, ng.low, nh.low));
     if (result != DIAGRAM_FULL) /* the cache may have moved meanwhile */
-        b->cache[hash & (b->n_cache - 1)] = (struct cached){f, g, h, result};
+        *find_cached(b, f, g, h) = (struct cached){f, g, h, result};
     return result;
 }
 
@@ -211,77 +238,21 @@ bfun diagram_at_least(struct diagram_builder *b, uint32_t k, size_t n, const bfu
 struct freezing {
     const struct diagram_builder *b;
     struct arena *scratch;
-    ARRAY(bfun) stack;
+    uint32_t *numbers; /* by function; of a node 0: none so far */
     ARRAY(struct diagram_node) nodes;
-    struct numbered {
-        bfun f; /* 0: empty */
-        uint32_t number;
-    } *seen;
-    size_t n_seen, cap_seen;
 };
 
-static struct numbered *find_seen(const struct freezing *z, bfun f)
+/* The number of a function: depth first, the high arm before the low one, arms before their
+ * node. */
+static uint32_t number_of(struct freezing *z, bfun f)
 {
-    size_t i = hash3(f, 0, 0) & (z->cap_seen - 1);
-    while (z->seen[i].f && z->seen[i].f != f)
-        i = (i + 1) & (z->cap_seen - 1);
-    return &z->seen[i];
-}
-
-static void make_room(struct freezing *z)
-{
-    if (2 * (z->n_seen + 1) <= z->cap_seen)
-        return;
-    struct numbered *old = z->seen;
-    size_t n = z->cap_seen;
-    z->cap_seen = n ? 2 * n : 64;
-    z->seen = NEW_ARRAY(z->scratch, z->cap_seen, struct numbered);
-    for (size_t i = 0; i < n; i++)
-        if (old[i].f)
-            *find_seen(z, old[i].f) = old[i];
-}
-
-/* The number of a constant or of a node that has one, else 0 (which is false). */
-static uint32_t number_of(const struct freezing *z, bfun f)
-{
-    if (f < 2)
-        return f;
-    return z->cap_seen ? find_seen(z, f)->number : 0;
-}
-
-static bool is_pending(const struct freezing *z, bfun f)
-{
-    return f >= 2 && number_of(z, f) == 0;
-}
-
-static void give_number(struct freezing *z, bfun f, struct diagram_node n)
-{
-    make_room(z);
+    if (f < 2 || z->numbers[f])
+        return z->numbers[f];
+    struct diagram_node n = z->b->nodes.at[f - 2];
+    n.high = number_of(z, n.high);
+    n.low = number_of(z, n.low);
     *array_push(z->scratch, &z->nodes) = n;
-    *find_seen(z, f) = (struct numbered){f, (uint32_t)z->nodes.n + 1};
-    z->n_seen++;
-}
-
-/* Depth first, the high arm before the low one, arms before their node. */
-static uint32_t number_all(struct freezing *z, bfun root)
-{
-    if (is_pending(z, root))
-        *array_push(z->scratch, &z->stack) = root;
-    while (z->stack.n) {
-        bfun f = *array_last(&z->stack);
-        struct diagram_node n = z->b->nodes.at[f - 2];
-        if (is_pending(z, n.high)) {
-            *array_push(z->scratch, &z->stack) = n.high;
-        } else if (is_pending(z, n.low)) {
-            *array_push(z->scratch, &z->stack) = n.low;
-        } else {
-            n.high = number_of(z, n.high);
-            n.low = number_of(z, n.low);
-            give_number(z, f, n);
-            z->stack.n--;
-        }
-    }
-    return number_of(z, root);
+    return z->numbers[f] = (uint32_t)z->nodes.n + 1;
 }
 
 static uint64_t structure_hash(const struct diagram *d)
@@ -314,9 +285,11 @@ const struct diagram *diagram_freeze(struct arena *a, const struct diagram_build
             return NULL;
     struct arena *scratch = arena_child(a);
     struct freezing z = {.b = b, .scratch = scratch};
+    z.numbers = NEW_ARRAY(scratch, b->nodes.n + 2, uint32_t);
+    z.numbers[BFUN_TRUE] = BFUN_TRUE;
     uint32_t *numbers = NEW_ARRAY(a, n_roots, uint32_t);
     for (size_t k = 0; k < n_roots; k++)
-        numbers[k] = number_all(&z, roots[k]);
+        numbers[k] = number_of(&z, roots[k]);
     struct diagram *d = NEW(a, struct diagram);
     *d = (struct diagram){.n_variables = count_variables(&z),
                           .n_nodes = z.nodes.n,

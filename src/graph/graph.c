@@ -45,6 +45,7 @@ struct graph {
     ARRAY(struct dim) dims; /* distinct */
     ARRAY(const struct diagram *) diagrams; /* distinct */
     ARRAY(struct table) tables;             /* distinct */
+    ARRAY(double) key;                      /* scratch: of a table */
     ARRAY(struct section) sections;
     bool open;
     struct slots equal;    /* nodes of the open section */
@@ -289,6 +290,14 @@ node_id graph_annuity(struct graph *g, node_id rate, node_id from, node_id to)
 
 /* ---- tables ---- */
 
+/* Room for a key that is looked up. */
+static double *key_room(struct graph *g, size_t n)
+{
+    g->key.n = 0;
+    array_reserve(g->arena, &g->key, n);
+    return g->key.at;
+}
+
 static uint64_t key_hash(size_t n, const double *key)
 {
     uint64_t h = n;
@@ -304,7 +313,7 @@ static void grow_tables(struct graph *g)
         *slots_free(&g->table, key_hash(g->tables.at[i].n, g->tables.at[i].key)) = (uint32_t)i + 1;
 }
 
-/* The number, from 1, of the table with this key; a new one `is` nothing yet. Keeps the key. */
+/* The number, from 1, of the table with this key; a new one `is` nothing yet. */
 static uint64_t table_number(struct graph *g, size_t n, const double *key)
 {
     if (2 * (g->tables.n + 1) > g->table.active)
@@ -315,7 +324,8 @@ static uint64_t table_number(struct graph *g, size_t n, const double *key)
         if (t->n == n && memcmp(t->key, key, n * sizeof *key) == 0)
             return g->table.at[i];
     }
-    *array_push(g->arena, &g->tables) = (struct table){.n = n, .key = key};
+    const double *kept = arena_copy(g->arena, key, n * sizeof *key);
+    *array_push(g->arena, &g->tables) = (struct table){.n = n, .key = kept};
     return g->table.at[i] = (uint32_t)g->tables.n;
 }
 
@@ -377,7 +387,7 @@ static bool windows_fit(const struct graph *g, size_t n, const node_id *args,
 static uint64_t windows_table(struct graph *g, const struct windows *w)
 {
     size_t n = 1 + 2 * w->n;
-    double *key = NEW_ARRAY(g->arena, n, double);
+    double *key = key_room(g, n);
     key[0] = OP_DIAGRAM;
     for (size_t k = 0; k < w->n; k++) {
         assert(w->at[k].from < w->at[k].to && isfinite(w->at[k].to - w->at[k].from));
@@ -443,7 +453,7 @@ static bool years_fit(const struct years *y, size_t n)
 static uint64_t years_table(struct graph *g, const struct years *y)
 {
     size_t n = 3 + y->n_years;
-    double *key = NEW_ARRAY(g->arena, n, double);
+    double *key = key_room(g, n);
     key[0] = OP_YEARS, key[1] = y->from, key[2] = y->to;
     for (size_t i = 0; i < y->n_years; i++)
         key[3 + i] = y->of_year[i];
@@ -483,8 +493,7 @@ static uint64_t course_table(struct graph *g, const struct course *c)
 {
     double every = c->first < INFINITY ? c->every : INFINITY;
     double key[] = {OP_COURSE, c->from, c->first, every, c->born, c->fresh};
-    size_t n = sizeof key / sizeof *key;
-    uint64_t number = table_number(g, n, arena_copy(g->arena, key, sizeof key));
+    uint64_t number = table_number(g, sizeof key / sizeof *key, key);
     struct table *t = &g->tables.at[number - 1];
     if (!t->is) {
         struct course *kept = NEW(g->arena, struct course);

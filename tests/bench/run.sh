@@ -19,3 +19,5 @@ trap 'exit 130' INT TERM
     "$source/samples/skerry/observations.csv" --why 'First survey' --by 'A. Lindqvist' >"$work/out"
 "$build/tests/bench/start" "$ohmen" "$build/tests/bench/empty" "$work/skerry.ohmen"
 "$build/tests/bench/load" 10000
+"$build/tests/bench/diagrams" 10000
+"$build/tests/bench/protection" 10000 "$work"
