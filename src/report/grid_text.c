@@ -91,7 +91,8 @@ static void put_row_labels(const struct frame *f, struct line *l, int y)
     const struct grid_plane *g = f->plane;
     int k = g->frequency_high - y / g->decade_rows, below = y % g->decade_rows;
     if (below == 0 && f->roomy)
-        line_add_right(l, grid_period_of_power(f->plane->page, k), f->gutter - 1 - f->power - 2, INK_PLAIN);
+        line_add_right(l, grid_period_of_power(g->page, k), f->gutter - 1 - f->power - 2,
+                       INK_PLAIN);
     if (below == 0)
         line_add_right(l, grid_power_text(f->plane->page, k), f->gutter - 1, INK_PLAIN);
     else if (below == 1 && !f->roomy)
@@ -175,7 +176,8 @@ static void write_damages(const struct frame *f, struct page *p)
     int across = g->damage_high - g->damage_low;
     size_t widest = 0;
     for (int k = 0; k <= across; k++)
-        widest = larger(widest, utf8_columns(grid_amount_of_power(f->plane->page, g->damage_low + k, "")));
+        widest = larger(widest,
+                        utf8_columns(grid_amount_of_power(g->page, g->damage_low + k, "")));
     int step = 1 + (int)widest / g->decade_columns;
     struct line l = line_begin(p);
     line_add(&l, with_currency(f, "damage", ""), INK_PLAIN);
