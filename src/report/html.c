@@ -44,12 +44,17 @@ static void put_link(struct html *h, const struct block *b, const char *id)
     html_raw(h, "</a></li>\n");
 }
 
-static void put_contents(struct html *h, const struct report *r)
+static bool has_contents(const struct report *r)
 {
     size_t n = 0;
     for (size_t i = 0; i < r->blocks.n; i++)
         n += is_listed(&r->blocks.at[i]);
-    if (n < LEAST_CONTENTS)
+    return n >= LEAST_CONTENTS;
+}
+
+static void put_contents(struct html *h, const struct report *r)
+{
+    if (!has_contents(r))
         return;
     html_raw(h, "<nav id=\"contents\" aria-labelledby=\"contents-head\">\n"
                 "<p id=\"contents-head\">Contents</p>\n<ul>\n");
@@ -160,12 +165,13 @@ static void put_head(struct html *h, const struct report *r)
     html_raw(h, "</title>\n<style>\n");
     for (size_t i = 0; i < html_style_parts; i++)
         html_raw(h, html_style[i]);
-    html_raw(h, "</style>\n</head>\n<body>\n");
+    html_raw(h, "</style>\n</head>\n");
 }
 
 /* The contents follow a heading that opens the report, so that paper begins with it. */
 static void put_body(struct html *h, const struct report *r)
 {
+    html_raw(h, has_contents(r) ? "<body class=\"long\">\n" : "<body>\n");
     html_raw(h, "<a class=\"skip\" href=\"#main\">Skip to the report</a>\n");
     if (has_figures(r))
         html_raw(h, "<input type=\"checkbox\" id=\"names\">"

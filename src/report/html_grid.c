@@ -19,7 +19,7 @@ enum {
     WIDEST_DECADE = 180, /* of the plane, in the picture's unit */
     HIGHEST_PLANE = 450,
     WIDEST_CURRENCY = 5, /* columns; a longer name is left to the key */
-    ONE_PLACE = 4,       /* marks as near as this share a sign */
+    ONE_PLACE = 7,       /* marks as near as this share a sign */
     USUAL_COLUMNS = 60   /* of a text grid, by which the decades are chosen */
 };
 
@@ -59,11 +59,11 @@ static double widest_frequency(const struct picture *f)
     return widest + 26;
 }
 
-static double widest_risk(const struct picture *f)
+/* Of the lines of risk from 10^from to 10^to. */
+static double widest_risk(const struct picture *f, int from, int to)
 {
-    const struct grid_plane *g = &f->plane;
     double widest = 0;
-    for (int k = g->frequency_low + g->damage_low; k <= g->frequency_high + g->damage_high; k++)
+    for (int k = from; k <= to; k++)
         widest = fmax(widest, svg_text_width(risk_words(f, k)));
     return widest;
 }
@@ -88,7 +88,8 @@ static void measure(struct picture *f)
         f->currency = "";
     f->left = fmax(widest_frequency(f),
                    svg_text_width(arena_printf(page_of(f)->arena, "damage, %s", f->currency)) + 22);
-    double room = SVG_WIDTH - f->left - widest_risk(f) - 14;
+    int low = g->frequency_low + g->damage_high, high = g->frequency_high + g->damage_high;
+    double room = SVG_WIDTH - f->left - widest_risk(f, low, high) - 14;
     f->size = floor(fmin(fmin(room / across, HIGHEST_PLANE / up), WIDEST_DECADE));
     f->width = f->size * across;
     f->height = f->size * up;
@@ -195,7 +196,7 @@ static void put_risks(struct picture *f)
 {
     const struct grid_plane *g = &f->plane;
     int low = g->frequency_low + g->damage_low, high = g->frequency_high + g->damage_high;
-    int step = steps_between(f, widest_risk(f));
+    int step = steps_between(f, widest_risk(f, low + 1, g->frequency_low + g->damage_high - 1));
     svg_text(f->html, "axis", 0, TOP + f->height + 38, "start", "equal risk");
     for (int k = low + 1; k < high; k++)
         put_decade_of_risk(f, k, step);

@@ -154,5 +154,11 @@ void svg_label(struct html *h, const char *s, const struct place_box *b, double 
     if (way > 2.5 * SVG_MARK)
         svg_line(h, "leader", x + (to_x - x) * SVG_MARK / way, y + (to_y - y) * SVG_MARK / way,
                  to_x, to_y);
-    svg_text(h, "label", b->x + b->width / 2, b->y + b->height / 2 + 0.36 * SVG_FONT, "middle", s);
+    double base = b->y + b->height / 2 + 0.36 * SVG_FONT;
+    if (b->x >= x)
+        svg_text(h, "label", b->x + 2, base, "start", s);
+    else if (b->x + b->width <= x)
+        svg_text(h, "label", b->x + b->width - 2, base, "end", s);
+    else
+        svg_text(h, "label", b->x + b->width / 2, base, "middle", s);
 }

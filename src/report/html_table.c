@@ -42,6 +42,10 @@ static void put_marked(struct html *h, const char *text, const char *mark)
 
 static void put_head(struct html *h, const struct table_column *c)
 {
+    if (!*c->head && !*c->unit && !c->period) {
+        html_raw(h, "<td></td>");
+        return;
+    }
     html_raw(h, "<th scope=\"col\"");
     html_raw(h, c->period ? " class=\"n\" colspan=\"2\"" : c->to_right ? " class=\"n\"" : "");
     html_raw(h, ">");

@@ -327,7 +327,7 @@ static const char *skip_tag(const char *s, bool *within)
 void html_words(const char *s, size_t n, char *out)
 {
     (void)n;
-    s = strstr(s, "<body>");
+    s = strstr(s, "<body");
     while (*s) {
         bool within = false;
         if (*s == '<') {

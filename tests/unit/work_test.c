@@ -186,6 +186,9 @@ const char *test_report(ohmen_report *r)
     const char *csv = ohmen_report_csv(r);
     ck_assert_ptr_nonnull(csv);
     check_csv(csv);
+    const char *html = ohmen_report_html(r);
+    ck_assert_msg(strncmp(html, "<!DOCTYPE html>\n", 16) == 0, "no page: %.40s", html);
+    ck_assert_ptr_nonnull(strstr(html, "</html>\n"));
     const char *json = ohmen_report_json(r);
     ck_assert_ptr_nonnull(json);
     if (!json_check(json, strlen(json), &bad))
