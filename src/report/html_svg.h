@@ -34,7 +34,8 @@ enum { SVG_MARK = 5 /* half the width of a mark */ };
 void svg_mark(struct html *h, enum svg_shape shape, double x, double y, const char *words);
 /* A mark alone, for a key. */
 const char *svg_mark_sample(struct html *h, enum svg_shape shape);
-/* The label in its place, on the side that is nearer to its mark, and a thin line to its mark where it is not beside it. */
+/* The label in its place, drawn from the end that is nearer to its mark, and a thin line to
+ * the mark where it is not beside it. */
 void svg_label(struct html *h, const char *s, const struct place_box *b, double x, double y);
 
 #endif

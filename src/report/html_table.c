@@ -11,6 +11,7 @@
 #include "report/table_shape.h"
 
 enum {
+    FEW_ROWS = 12, /* stay on one sheet */
     WIDEST_CLASS = 24,
     SHORT_WORDS = 20,
     ENTRY_KEEP = 4,
@@ -179,7 +180,8 @@ static void put_table(struct html *h, const struct block *b, const char *id, con
 {
     struct table_shape t = table_shape_of(&h->page, b);
     assert(t.fits);
-    html_open_scroll(h, "wide", caption && *caption ? caption : h->section, t.width > NARROW_TABLE);
+    html_open_scroll(h, t.n_rows <= FEW_ROWS ? "whole" : "rows",
+                     caption && *caption ? caption : h->section, t.width > NARROW_TABLE);
     html_raw(h, fits_paper(&t) ? "<table class=\"fits\"" : "<table");
     put_id(h, id);
     put_caption(h, "caption", caption);
