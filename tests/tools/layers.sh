@@ -106,9 +106,9 @@ check_text()
     FNR == 2 && !/^\/\*/ { tell("no comment that says what the file is") }
     FNR == 1 { neutral = FILENAME ~ /^src\/(base|math|graph|eval|report)\// }
     index($0, "\t") { tell("a tab") }
-    { low = tolower($0); gsub(/color-scheme/, "", low) } # a word of style sheets
+    { low = tolower($0); gsub(/color-scheme/, "color-styles", low) } # a word of style sheets
     neutral && match(low, /hazard|relay|scheme|breaker|outcome/) {
-        tell("a word of the trade in a neutral layer: " substr(low, RSTART, RLENGTH))
+        tell("a word of the trade in a neutral layer: " substr($0, RSTART, RLENGTH))
     }
     length($0) > 100 {
         line = $0
