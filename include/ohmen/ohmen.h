@@ -6,7 +6,7 @@
  * hazards with their frequency, outcomes, damage and risk; decisions with their
  * options weighed against doing nothing; the grid of frequency and damage; and the
  * derivation of any single figure. A report is made of neutral blocks and is written
- * as text, JSON or CSV.
+ * as text, JSON, CSV or HTML.
  *
  *     #include <ohmen/ohmen.h>
  *
@@ -71,11 +71,13 @@ typedef struct ohmen_layout {
 } ohmen_layout;
 ohmen_layout ohmen_layout_defaults(void);
 
-/* The report as text for people, as one JSON object, and its tables as CSV. Owned by
- * the report; each call makes a new one. NULL when out of memory. */
+/* The report as text for people, as one JSON object, its tables as CSV, and as one page of
+ * HTML that needs nothing else. Owned by the report; each call makes a new one. NULL when
+ * out of memory. */
 const char *ohmen_report_text(ohmen_report *r, const ohmen_layout *layout);
 const char *ohmen_report_json(ohmen_report *r);
 const char *ohmen_report_csv(ohmen_report *r);
+const char *ohmen_report_html(ohmen_report *r);
 void ohmen_report_free(ohmen_report *r);
 
 /* Diagnostics that came with the report (an import that was refused):

@@ -182,14 +182,28 @@ ohmen_status args_unknown_command(const char *name, ohmen_error *e)
                        near.name ? "'?" : "");
 }
 
+/* A report has one form. */
+static void check_forms(struct reader *r)
+{
+    static const enum option_id forms[] = {OPTION_JSON, OPTION_CSV, OPTION_HTML};
+    const char *first = NULL;
+    for (size_t i = 0; i < sizeof forms / sizeof *forms; i++) {
+        const char *name = options[forms[i]].name;
+        if (r->out->given[forms[i]] && first)
+            message_set(r->e, OHMEN_USAGE, "--%s and --%s are two forms of one report; choose one",
+                        first, name);
+        else if (r->out->given[forms[i]])
+            first = name;
+    }
+}
+
 static void check_options(struct reader *r)
 {
     const struct command *c = r->out->command;
     for (int id = 0; id < OPTION_COUNT; id++)
         if (r->out->given[id] && id != OPTION_VERSION && !command_takes(c, (enum option_id)id))
             message_set(r->e, OHMEN_USAGE, "'%s' takes no option --%s", c->name, options[id].name);
-    if (r->out->given[OPTION_JSON] && r->out->given[OPTION_CSV])
-        message_set(r->e, OHMEN_USAGE, "--json and --csv are two forms of one report; choose one");
+    check_forms(r);
 }
 
 static void check_operands(struct reader *r)

@@ -13,8 +13,8 @@ const char *const command_jobs[JOB_COUNT] = {
 };
 
 #define FORM                                                                                       \
-    (OPTION_BIT(OPTION_JSON) | OPTION_BIT(OPTION_CSV) | OPTION_BIT(OPTION_WIDTH) |                 \
-     OPTION_BIT(OPTION_ASCII) | OPTION_BIT(OPTION_COLOUR))
+    (OPTION_BIT(OPTION_JSON) | OPTION_BIT(OPTION_CSV) | OPTION_BIT(OPTION_HTML) |                  \
+     OPTION_BIT(OPTION_WIDTH) | OPTION_BIT(OPTION_ASCII) | OPTION_BIT(OPTION_COLOUR))
 #define ON_REGISTER OPTION_BIT(OPTION_REGISTER)
 #define WHEN_AND_WHOSE                                                                             \
     (OPTION_BIT(OPTION_AS_OF) | OPTION_BIT(OPTION_PERSPECTIVE) | OPTION_BIT(OPTION_DATE))

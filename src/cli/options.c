@@ -14,6 +14,8 @@ const struct option options[OPTION_COUNT] = {
                                  "the only *.ohmen file in the current folder"},
     [OPTION_JSON] = {"json", .help = "print the report as one JSON object"},
     [OPTION_CSV] = {"csv", .help = "print the tables of the report as CSV"},
+    [OPTION_HTML] = {"html", .help = "print the report as one page of HTML, for a browser or "
+                                     "for paper, with grids and curves as pictures"},
     [OPTION_WIDTH] = {"width", 0, VALUE_NUMBER, "N", 60, 200,
                       .help = "columns of the text; else the width of the terminal (or COLUMNS, "
                               "where that is set), at least 60 and at most 200; else 100"},

@@ -13,6 +13,7 @@ enum option_id {
     OPTION_REGISTER,
     OPTION_JSON,
     OPTION_CSV,
+    OPTION_HTML,
     OPTION_WIDTH,
     OPTION_ASCII,
     OPTION_COLOUR,

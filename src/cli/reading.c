@@ -38,9 +38,10 @@ ohmen_status reading_open(const struct call *call, ohmen_mode mode, ohmen_regist
 ohmen_status reading_print(const struct call *call, ohmen_report *report, ohmen_error *e)
 {
     const bool *given = call->args->given;
-    const char *text = given[OPTION_JSON]  ? ohmen_report_json(report)
-                       : given[OPTION_CSV] ? ohmen_report_csv(report)
-                                           : ohmen_report_text(report, &call->layout);
+    const char *text = given[OPTION_JSON]   ? ohmen_report_json(report)
+                       : given[OPTION_CSV]  ? ohmen_report_csv(report)
+                       : given[OPTION_HTML] ? ohmen_report_html(report)
+                                            : ohmen_report_text(report, &call->layout);
     if (!text)
         return message_set(e, OHMEN_MEMORY, "out of memory while the report was written");
     return output_text(text, e);

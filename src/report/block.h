@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Reports as neutral blocks of typed cells, and their writers.
  *
- * A use case fills a `struct report`; a writer prints it as text, JSON or CSV. No
+ * A use case fills a `struct report`; a writer prints it as text, JSON, CSV or HTML. No
  * writer computes: it only rounds for display. Each number carries its value in
  * the unit that it is shown in, and the name of the figure that it is, so that
  * every printed digit can be explained. Text is data: writers make it harmless.
@@ -207,6 +207,12 @@ void report_write_json(struct text *out, const struct report *r);
  * curve as a table of line, mark, x and y: a row for each point, without a mark, then one for
  * each mark, without a line. Tables are parted by an empty line. */
 void report_write_csv(struct text *out, const struct report *r);
+
+/* One page of HTML that needs nothing else and runs nothing: the blocks in their order, with
+ * contents, and grids and curves as pictures (SVG) with their numbers in tables below. Every
+ * number is rounded as in the text, and carries the name of its figure in `data-figure`. For
+ * screens from 320 pixels and for paper. */
+void report_write_html(struct text *out, const struct report *r);
 
 /* The parts that other writers and tests use: three significant digits of the exact
  * double, rounded half to even; -0 is 0, an infinity "infinite". buf: 32 bytes. */

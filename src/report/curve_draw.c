@@ -163,10 +163,15 @@ static void draw_shared(struct curve_plane *g, int x, int y)
             put(g, x, y, g->symbols[i], CURVE_LINE);
 }
 
-static void draw_symbols(struct curve_plane *g)
+void curve_choose_symbols(struct curve_plane *g)
 {
     for (size_t i = 0; i < g->curve->lines.n; i++)
         g->symbols[i] = choose_symbol(g, i);
+}
+
+static void draw_symbols(struct curve_plane *g)
+{
+    curve_choose_symbols(g);
     for (int x = 0; x < g->columns; x++)
         for (int y = 0; y <= CURVE_ROWS; y++)
             draw_shared(g, x, y);

@@ -48,7 +48,7 @@ static void add_point(struct report *r, struct row *row, const struct curve_poin
     }
 }
 
-static void write_lines(struct page *p, const struct curve_plane *g)
+const struct block *curve_key_lines(const struct page *p, const struct curve_plane *g)
 {
     const struct curve *c = g->curve;
     struct report r;
@@ -69,10 +69,10 @@ static void write_lines(struct page *p, const struct curve_plane *g)
         add_point(&r, row, e.least);
         add_point(&r, row, e.greatest);
     }
-    page_table(p, b);
+    return b;
 }
 
-static void write_marks(struct page *p, const struct curve_plane *g)
+const struct block *curve_key_marks(const struct page *p, const struct curve_plane *g)
 {
     const struct curve *c = g->curve;
     struct report r;
@@ -87,11 +87,10 @@ static void write_marks(struct page *p, const struct curve_plane *g)
         struct row *row = block_row(&r, b);
         row_text(&r, row, curve_mark_glyph(p));
         row_text(&r, row, m->label);
-        row_number(&r, row, m->y, NULL);
-        row_number(&r, row, m->x, NULL);
+        row_number(&r, row, m->y, m->y_figure);
+        row_number(&r, row, m->x, m->x_figure);
     }
-    page_blank(p);
-    page_table(p, b);
+    return b;
 }
 
 /* --- what is not in the picture --- */
@@ -114,13 +113,7 @@ static void add_name(struct text *t, const char *before, const char *what)
     text_printf(t, "%s %s", t->n ? "," : before, what);
 }
 
-static void tell(struct page *p, const struct text *t)
-{
-    if (t->n)
-        page_paragraph(p, text_str(t), 0, INK_PLAIN);
-}
-
-static void tell_without_place(struct page *p, const struct curve *c)
+static const char *words_without_place(const struct page *p, const struct curve *c)
 {
     static const char *const before =
         "Not in the picture, for a log axis has no place at or below 0:";
@@ -136,10 +129,10 @@ static void tell_without_place(struct page *p, const struct curve *c)
     for (size_t i = 0; i < c->marks.n; i++)
         if (!has_place(c, c->marks.at[i].x, c->marks.at[i].y))
             add_name(&t, before, page_clean(p, c->marks.at[i].label));
-    tell(p, &t);
+    return text_str(&t);
 }
 
-static void tell_crowded(struct page *p, const struct curve_plane *g)
+static const char *words_crowded(const struct page *p, const struct curve_plane *g)
 {
     struct text t;
     text_init(&t, p->arena);
@@ -149,21 +142,27 @@ static void tell_crowded(struct page *p, const struct curve_plane *g)
             add_name(&t,
                      "In the picture without a label, for want of room:", page_clean(p, m->label));
     }
-    tell(p, &t);
+    return text_str(&t);
+}
+
+struct lines curve_key_remarks(const struct page *p, const struct curve_plane *g)
+{
+    const char *const words[] = {words_crowded(p, g), words_without_place(p, g->curve)};
+    struct lines remarks = {0};
+    for (size_t i = 0; i < 2; i++)
+        if (*words[i])
+            *array_push(p->arena, &remarks) = words[i];
+    return remarks;
 }
 
 /* An empty line parts the remarks from the tables when there are any. */
 static void write_remarks(struct page *p, const struct curve_plane *g)
 {
-    size_t before = p->out->n;
-    page_blank(p);
-    size_t start = p->out->n;
-    tell_crowded(p, g);
-    tell_without_place(p, g->curve);
-    if (p->out->n == start) {
-        p->out->n = before;
-        p->out->at[before] = 0;
-    }
+    struct lines remarks = curve_key_remarks(p, g);
+    if (remarks.n)
+        page_blank(p);
+    for (size_t i = 0; i < remarks.n; i++)
+        page_paragraph(p, remarks.at[i], 0, INK_PLAIN);
 }
 
 static void write_band(struct page *p)
@@ -178,8 +177,10 @@ void curve_write_key(struct page *p, const struct curve_plane *g)
     if (g->banded)
         write_band(p);
     if (g->curve->lines.n)
-        write_lines(p, g);
-    if (g->curve->marks.n)
-        write_marks(p, g);
+        page_table(p, curve_key_lines(p, g));
+    if (g->curve->marks.n) {
+        page_blank(p);
+        page_table(p, curve_key_marks(p, g));
+    }
     write_remarks(p, g);
 }

@@ -98,11 +98,22 @@ void curve_plane_range(struct curve_plane *g);
 void curve_plane_open(struct curve_plane *g, int columns);
 /* The cell; NULL outside the plane. */
 struct curve_cell *curve_cell_at(const struct curve_plane *g, int x, int y);
+/* The symbol of each line into `symbols`: its own, or another one where that is taken. */
+void curve_choose_symbols(struct curve_plane *g);
 /* Lines, marks and labels; curve_draw.c. */
 void curve_draw(struct curve_plane *g);
 
 /* The key: lines and marks with their values, and what is not in the picture. */
 void curve_write_key(struct page *p, const struct curve_plane *g);
+/* Its parts, for other writers: the tables of the lines (their least and greatest points)
+ * and of the marks, and the remarks. The blocks are in the page's scratch arena. */
+const struct block *curve_key_lines(const struct page *p, const struct curve_plane *g);
+const struct block *curve_key_marks(const struct page *p, const struct curve_plane *g);
+struct lines curve_key_remarks(const struct page *p, const struct curve_plane *g);
+
+/* The words at the axes: head, unit and kind of the axis; "" when it has none of them. */
+const char *curve_x_words(const struct page *p, const struct curve_scale *s);
+const char *curve_y_words(const struct page *p, const struct curve_scale *s);
 
 /* Signs of the page: of a mark, a filled cell, the range in a column. */
 const char *curve_mark_glyph(const struct page *p);

@@ -12,7 +12,7 @@
 enum { RIGHT_MARGIN = 3 /* for the half of the last tick's label */ };
 
 /* "Yearly cost, kEUR/a". */
-static const char *axis_words(const struct page *p, const struct curve_scale *s)
+const char *curve_x_words(const struct page *p, const struct curve_scale *s)
 {
     const struct curve_axis *axis = s->axis;
     const char *head = page_clean(p, axis->head), *unit = page_clean(p, axis->unit);
@@ -24,9 +24,9 @@ static const char *axis_words(const struct page *p, const struct curve_scale *s)
                         axis->log ? " (log axis)" : "");
 }
 
-static const char *y_words(const struct page *p, const struct curve_scale *s)
+const char *curve_y_words(const struct page *p, const struct curve_scale *s)
 {
-    const char *words = axis_words(p, s);
+    const char *words = curve_x_words(p, s);
     bool far = !s->axis->log && (s->low > 0 || s->high < 0);
     return far ? arena_printf(p->arena, "%s (the axis does not begin at 0)", words) : words;
 }
@@ -111,7 +111,7 @@ static void write_ticks(struct page *p, const struct curve_plane *g, size_t gutt
 /* Centred below the axis, or a paragraph when it is wider. */
 static void write_x_head(struct page *p, const struct curve_plane *g, size_t gutter)
 {
-    const char *words = axis_words(p, &g->x);
+    const char *words = curve_x_words(p, &g->x);
     size_t columns = utf8_columns(words), room = (size_t)g->columns;
     if (columns > room) {
         page_paragraph(p, words, 0, INK_PLAIN);
@@ -130,7 +130,7 @@ static void write_picture(struct page *p, struct curve_plane *g)
     size_t gutter = gutter_of(&g->y);
     curve_plane_open(g, (int)(p->width - gutter - 1 - RIGHT_MARGIN));
     curve_draw(g);
-    const char *words = y_words(p, &g->y);
+    const char *words = curve_y_words(p, &g->y);
     if (*words)
         page_paragraph(p, words, 0, INK_PLAIN);
     for (int y = CURVE_ROWS; y >= 0; y--)

@@ -44,16 +44,20 @@ static void draw_line(struct grid_plane *g, size_t i)
     }
 }
 
+void grid_choose_symbols(struct grid_plane *g)
+{
+    g->symbols = NEW_ARRAY(g->page->arena, g->grid->lines.n, const char *);
+    for (size_t i = 0; i < g->grid->lines.n; i++)
+        g->symbols[i] = choose_symbol(g, i);
+}
+
 void grid_draw_lines(struct grid_plane *g)
 {
-    size_t n = g->grid->lines.n;
-    g->symbols = NEW_ARRAY(g->page->arena, n, const char *);
+    grid_choose_symbols(g);
     for (int k = g->frequency_low + g->damage_low + 1; k < g->frequency_high + g->damage_high; k++)
         draw_risk_decade(g, k);
-    for (size_t i = 0; i < n; i++) {
-        g->symbols[i] = choose_symbol(g, i);
+    for (size_t i = 0; i < g->grid->lines.n; i++)
         draw_line(g, i);
-    }
 }
 
 const char *grid_shared_glyph(const struct page *p)

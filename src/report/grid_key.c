@@ -28,26 +28,30 @@ static bool crosses_plane(const struct grid_plane *g, double risk)
     return k > g->frequency_low + g->damage_low && k < g->frequency_high + g->damage_high;
 }
 
+const char *grid_key_line(const struct grid_plane *g, size_t i)
+{
+    const char *words = line_words(g, &g->grid->lines.at[i]);
+    if (crosses_plane(g, g->grid->lines.at[i].risk))
+        return words;
+    return arena_printf(g->page->arena, "%s (outside the picture)", words);
+}
+
 static void write_signs(struct page *p, const struct grid_plane *g)
 {
     const struct grid *grid = g->grid;
     struct pair *pairs = NEW_ARRAY(p->arena, grid->lines.n + 1, struct pair);
     for (size_t i = 0; i < grid->lines.n; i++) {
         const char *s = g->symbols[i];
-        const char *words = line_words(g, &grid->lines.at[i]);
-        if (!crosses_plane(g, grid->lines.at[i].risk))
-            words = arena_printf(p->arena, "%s (outside the picture)", words);
-        pairs[i] = (struct pair){arena_printf(p->arena, "%s%s%s%s", s, s, s, s), words, ""};
+        pairs[i] =
+            (struct pair){arena_printf(p->arena, "%s%s%s%s", s, s, s, s), grid_key_line(g, i), ""};
     }
-    pairs[grid->lines.n] =
-        (struct pair){p->ascii ? ". ." : "· ·", "equal risk, one line a decade", ""};
+    pairs[grid->lines.n] = (struct pair){p->ascii ? ". ." : "· ·", GRID_KEY_DECADES, ""};
     page_pairs(p, pairs, grid->lines.n + 1);
     page_blank(p);
 }
 
-static void write_marks(struct page *p, const struct grid_plane *g)
+const struct block *grid_key_marks(const struct page *p, const struct grid *grid)
 {
-    const struct grid *grid = g->grid;
     struct report r;
     report_init(&r, p->arena);
     struct block *b = report_table(&r, NULL, NULL);
@@ -62,24 +66,29 @@ static void write_marks(struct page *p, const struct grid_plane *g)
         struct row *row = block_row(&r, b);
         row_text(&r, row, m->label);
         row_text(&r, row, m->name);
-        row_number(&r, row, m->frequency, NULL);
-        row_number(&r, row, m->damage, NULL);
+        row_number(&r, row, m->frequency, m->frequency_figure);
+        row_number(&r, row, m->damage, m->damage_figure);
         row_number(&r, row, m->frequency * m->damage, NULL);
     }
-    page_table(p, b);
+    return b;
+}
+
+static void add_remark(const struct grid_plane *g, struct lines *to, const struct text *t)
+{
+    if (t->n)
+        *array_push(g->page->arena, to) = text_str(t);
 }
 
 /* "before: A, B." for the marks that `test` picks; nothing when there are none. */
-static void write_list(struct page *p, const struct grid_plane *g, const char *before,
+static void list_marks(struct lines *to, const struct grid_plane *g, const char *before,
                        bool (*test)(const struct grid_plane *g, size_t i))
 {
     struct text t;
-    text_init(&t, p->arena);
+    text_init(&t, g->page->arena);
     for (size_t i = 0; i < g->grid->marks.n; i++)
         if (test(g, i))
             text_printf(&t, "%s %s", t.n ? "," : before, label_of(g, i));
-    if (t.n)
-        page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+    add_remark(g, to, &t);
 }
 
 static void add_company(struct text *t, const struct grid_plane *g, size_t first)
@@ -89,21 +98,20 @@ static void add_company(struct text *t, const struct grid_plane *g, size_t first
             text_printf(t, "%s %s", i == first ? "" : ",", label_of(g, i));
 }
 
-static void write_company(struct page *p, const struct grid_plane *g)
+static void list_company(struct lines *to, const struct grid_plane *g)
 {
     struct text t;
-    text_init(&t, p->arena);
+    text_init(&t, g->page->arena);
     for (size_t i = 0; i < g->grid->marks.n; i++) {
         if (!g->spots[i].placed || g->spots[i].first != i || g->spots[i].company < 2)
             continue;
         if (t.n)
             text_add(&t, ";");
         else
-            text_printf(&t, "At one place (%s):", grid_shared_glyph(p));
+            text_printf(&t, "At one place (%s):", grid_shared_glyph(g->page));
         add_company(&t, g, i);
     }
-    if (t.n)
-        page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+    add_remark(g, to, &t);
 }
 
 /* "5 -> 5a, 5b": all arrows from one mark. */
@@ -122,14 +130,13 @@ static void add_arrows_from(struct text *t, const struct grid_plane *g, size_t f
     }
 }
 
-static void write_arrows(struct page *p, const struct grid_plane *g)
+static void list_arrows(struct lines *to, const struct grid_plane *g)
 {
     struct text t;
-    text_init(&t, p->arena);
+    text_init(&t, g->page->arena);
     for (size_t from = 0; from < g->grid->marks.n; from++)
         add_arrows_from(&t, g, from);
-    if (t.n)
-        page_paragraph(p, text_str(&t), 0, INK_PLAIN);
+    add_remark(g, to, &t);
 }
 
 static bool is_crowded(const struct grid_plane *g, size_t i)
@@ -158,23 +165,27 @@ static bool is_nowhere(const struct grid_plane *g, size_t i)
     return !g->spots[i].placed && !is_never(g, i) && !is_harmless(g, i);
 }
 
+struct lines grid_key_remarks(const struct grid_plane *g)
+{
+    struct lines to = {0};
+    list_company(&to, g);
+    list_arrows(&to, g);
+    list_marks(&to, g, "In the picture without a label, for want of room:", is_crowded);
+    list_marks(&to, g, "Beyond the axes, drawn at the edge of the picture:", is_clamped);
+    list_marks(&to, g, "Not in the picture, for it never happens:", is_never);
+    list_marks(&to, g, "Not in the picture, for it does no damage:", is_harmless);
+    list_marks(&to, g, "Not in the picture, for it has no place on the axes:", is_nowhere);
+    return to;
+}
+
 /* All lines below the table; an empty line parts them from it when there are any. */
 static void write_remarks(struct page *p, const struct grid_plane *g)
 {
-    size_t before = p->out->n;
-    page_blank(p);
-    size_t start = p->out->n;
-    write_company(p, g);
-    write_arrows(p, g);
-    write_list(p, g, "In the picture without a label, for want of room:", is_crowded);
-    write_list(p, g, "Beyond the axes, drawn at the edge of the picture:", is_clamped);
-    write_list(p, g, "Not in the picture, for it never happens:", is_never);
-    write_list(p, g, "Not in the picture, for it does no damage:", is_harmless);
-    write_list(p, g, "Not in the picture, for it has no place on the axes:", is_nowhere);
-    if (p->out->n == start) {
-        p->out->n = before;
-        p->out->at[before] = 0;
-    }
+    struct lines remarks = grid_key_remarks(g);
+    if (remarks.n)
+        page_blank(p);
+    for (size_t i = 0; i < remarks.n; i++)
+        page_paragraph(p, remarks.at[i], 0, INK_PLAIN);
 }
 
 void grid_write_key(struct page *p, const struct grid_plane *g)
@@ -185,6 +196,6 @@ void grid_write_key(struct page *p, const struct grid_plane *g)
     }
     if (g->n_placed)
         write_signs(p, g);
-    write_marks(p, g);
+    page_table(p, grid_key_marks(p, g->grid));
     write_remarks(p, g);
 }

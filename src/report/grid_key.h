@@ -8,4 +8,13 @@
 
 void grid_write_key(struct page *p, const struct grid_plane *g);
 
+/* Its parts, for other writers. */
+#define GRID_KEY_DECADES "equal risk, one line a decade"
+/* What line i is, clean. */
+const char *grid_key_line(const struct grid_plane *g, size_t i);
+/* The table of marks, in the page's scratch arena. */
+const struct block *grid_key_marks(const struct page *p, const struct grid *grid);
+/* What the picture cannot show, from the plane's spots. */
+struct lines grid_key_remarks(const struct grid_plane *g);
+
 #endif

@@ -60,6 +60,8 @@ bool grid_plane_widen(struct grid_plane *g);
 /* Finds the marks that share a cell, and makes the cells; once the size is final. */
 void grid_plane_open(struct grid_plane *g);
 
+/* The symbol of each line into `symbols`: its own, or another one where that does not fit. */
+void grid_choose_symbols(struct grid_plane *g);
 /* Draw all layers, in this order; grid_draw.c, grid_arrow.c and grid_label.c. */
 void grid_draw_lines(struct grid_plane *g);
 void grid_draw_marks(struct grid_plane *g);

@@ -4,13 +4,12 @@
  * Invariant: every mark is in the picture or named by the key, and the key has all
  * numbers that the picture only shows. */
 #include <math.h>
-#include <stdio.h>
-#include <stdlib.h>
 #include <string.h>
 
 #include "base/utf8.h"
 #include "report/grid_key.h"
 #include "report/grid_plane.h"
+#include "report/grid_words.h"
 #include "report/number.h"
 
 enum {
@@ -36,48 +35,11 @@ static bool ascii(const struct frame *f)
     return f->plane->page->ascii;
 }
 
-/* 10^k as a power, "1e-3" in ASCII. */
-static const char *power_text(const struct frame *f, int k)
-{
-    static const char *const raised[] = {"⁰", "¹", "²", "³", "⁴", "⁵", "⁶", "⁷", "⁸", "⁹"};
-    struct arena *a = f->plane->page->arena;
-    if (ascii(f))
-        return arena_printf(a, "1e%d", k);
-    struct text t;
-    text_init(&t, a);
-    text_add(&t, k < 0 ? "10⁻" : "10");
-    for (const char *s = arena_printf(a, "%d", abs(k)); *s; s++)
-        text_add(&t, raised[*s - '0']);
-    return text_str(&t);
-}
-
-/* 10^n per year, in words: exact for the powers that an axis has. */
-static const char *period_of_power(const struct frame *f, int k)
-{
-    static const char *const plain[] = {"1", "10", "100", "1000", "10000"};
-    struct arena *a = f->plane->page->arena;
-    int n = abs(k);
-    const char *number = n < 5 ? plain[n] : arena_printf(a, "1e%d", n);
-    return k < 0 ? arena_printf(a, "1 in %s a", number) : arena_printf(a, "%s per a", number);
-}
-
-/* 10^k with a prefix: "100 k" + unit. */
-static const char *amount_of_power(const struct frame *f, int k, const char *unit)
-{
-    static const char *const plain[] = {"1", "10", "100"};
-    struct arena *a = f->plane->page->arena;
-    if (k < -2 || k > 11)
-        return arena_printf(a, *unit ? "1e%d %s" : "1e%d%s", k, unit);
-    const char *number = k < 0 ? k == -1 ? "0.1" : "0.01" : plain[k % 3];
-    const char *prefix = k < 0 ? "" : money_prefix(k / 3 * 3);
-    return arena_printf(a, *unit || *prefix ? "%s %s%s" : "%s%s%s", number, prefix, unit);
-}
-
 static const char *risk_label(const struct frame *f, int k, bool with_unit)
 {
     struct arena *a = f->plane->page->arena;
     const char *unit = *f->currency ? arena_printf(a, "%s/a", f->currency) : "";
-    return amount_of_power(f, k, with_unit ? unit : "");
+    return grid_amount_of_power(f->plane->page, k, with_unit ? unit : "");
 }
 
 static size_t larger(size_t a, size_t b)
@@ -107,8 +69,8 @@ static void measure(struct frame *f)
     if (utf8_columns(f->currency) > WIDEST_CURRENCY)
         f->currency = "";
     for (int k = g->frequency_low; k <= g->frequency_high; k++) {
-        f->power = larger(f->power, utf8_columns(power_text(f, k)));
-        f->period = larger(f->period, utf8_columns(period_of_power(f, k)));
+        f->power = larger(f->power, utf8_columns(grid_power_text(f->plane->page, k)));
+        f->period = larger(f->period, utf8_columns(grid_period_of_power(f->plane->page, k)));
     }
     f->roomy = g->page->width >= ROOMY_PAGE;
     f->gutter = f->roomy ? f->period + 2 + f->power : larger(f->period, f->power);
@@ -129,11 +91,12 @@ static void put_row_labels(const struct frame *f, struct line *l, int y)
     const struct grid_plane *g = f->plane;
     int k = g->frequency_high - y / g->decade_rows, below = y % g->decade_rows;
     if (below == 0 && f->roomy)
-        line_add_right(l, period_of_power(f, k), f->gutter - 1 - f->power - 2, INK_PLAIN);
+        line_add_right(l, grid_period_of_power(g->page, k), f->gutter - 1 - f->power - 2,
+                       INK_PLAIN);
     if (below == 0)
-        line_add_right(l, power_text(f, k), f->gutter - 1, INK_PLAIN);
+        line_add_right(l, grid_power_text(f->plane->page, k), f->gutter - 1, INK_PLAIN);
     else if (below == 1 && !f->roomy)
-        line_add_right(l, period_of_power(f, k), f->gutter - 1, INK_PLAIN);
+        line_add_right(l, grid_period_of_power(f->plane->page, k), f->gutter - 1, INK_PLAIN);
     line_to(l, f->gutter);
 }
 
@@ -213,12 +176,13 @@ static void write_damages(const struct frame *f, struct page *p)
     int across = g->damage_high - g->damage_low;
     size_t widest = 0;
     for (int k = 0; k <= across; k++)
-        widest = larger(widest, utf8_columns(amount_of_power(f, g->damage_low + k, "")));
+        widest = larger(widest,
+                        utf8_columns(grid_amount_of_power(g->page, g->damage_low + k, "")));
     int step = 1 + (int)widest / g->decade_columns;
     struct line l = line_begin(p);
     line_add(&l, with_currency(f, "damage", ""), INK_PLAIN);
     for (int k = 0; k <= across; k += step)
-        put_below(f, &l, k, amount_of_power(f, g->damage_low + k, ""));
+        put_below(f, &l, k, grid_amount_of_power(f->plane->page, g->damage_low + k, ""));
     line_end(&l);
 }
 

@@ -357,6 +357,12 @@ static void as_csv(struct text *out, const struct report *r, const ohmen_layout 
     report_write_csv(out, r);
 }
 
+static void as_html(struct text *out, const struct report *r, const ohmen_layout *layout)
+{
+    (void)layout;
+    report_write_html(out, r);
+}
+
 static const char *write_report(ohmen_report *r, report_writer *writer, const ohmen_layout *layout)
 {
     struct text out;
@@ -385,6 +391,11 @@ const char *ohmen_report_json(ohmen_report *r)
 const char *ohmen_report_csv(ohmen_report *r)
 {
     return write_report(r, as_csv, NULL);
+}
+
+const char *ohmen_report_html(ohmen_report *r)
+{
+    return write_report(r, as_html, NULL);
 }
 
 void ohmen_report_free(ohmen_report *r)

@@ -36,6 +36,8 @@ checks=0 failed=0
 commands='report --ascii --width 100
 report --json
 report --csv
+report --html
+weigh D-VH-BUS --html
 report --json --perspective company
 hazards --ascii
 hazards --csv --site VH

@@ -119,6 +119,10 @@ for layer in base math graph eval report; do
 done
 
 right_tree
+file=src/report/x.c && put $file '/* color-scheme, a word of style sheets */'
+sees '20 source files, nothing wrong'
+
+right_tree
 file=src/base/x.c && put $file "$(printf '\tint i;')"
 sees 'src/base/x.c:3: a tab'
 long=$(printf '/* %094d */' 0)

@@ -74,6 +74,7 @@ int main(int argc, char **argv)
     srunner_add_suite(sr, suite_report_page());
     srunner_add_suite(sr, suite_report_grid());
     srunner_add_suite(sr, suite_report_curve());
+    srunner_add_suite(sr, suite_report_html());
     srunner_add_suite(sr, suite_report_golden());
     srunner_run_all(sr, CK_NORMAL);
     bool good = srunner_ntests_run(sr) > 0 && srunner_ntests_failed(sr) == 0;

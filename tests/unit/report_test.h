@@ -14,6 +14,7 @@ Suite *suite_report_table(void);
 Suite *suite_report_page(void);
 Suite *suite_report_grid(void);
 Suite *suite_report_curve(void);
+Suite *suite_report_html(void);
 Suite *suite_report_golden(void);
 
 /* Folder of the goldens: the program's first argument. */

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* One invented report as text at four widths, as JSON and as CSV, compared with the files
+/* One invented report as text at four widths, as JSON, CSV and HTML, compared with the files
  * in tests/golden/report. With OHMEN_ACCEPT=1 in the environment the files are
  * written anew instead: read the difference before you keep it. */
 #include "report_test.h"
@@ -181,13 +181,16 @@ START_TEST(as_data)
 {
     struct arena *a = arena_new(NULL);
     struct report r = sample(a);
-    struct text json, csv;
+    struct text json, csv, html;
     text_init(&json, a);
     text_init(&csv, a);
+    text_init(&html, a);
     report_write_json(&json, &r);
     report_write_csv(&csv, &r);
+    report_write_html(&html, &r);
     compare(a, "report.json", json.at, json.n);
     compare(a, "report.csv", csv.at, csv.n);
+    compare(a, "report.html", html.at, html.n);
     arena_free(a);
 }
 END_TEST

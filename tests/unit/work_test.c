@@ -9,6 +9,7 @@
 
 #include "base/file.h"
 #include "base/utf8.h"
+#include "html_check.h"
 #include "json_check.h"
 
 const char *test_source, *test_tool;
@@ -186,6 +187,11 @@ const char *test_report(ohmen_report *r)
     const char *csv = ohmen_report_csv(r);
     ck_assert_ptr_nonnull(csv);
     check_csv(csv);
+    const char *html = ohmen_report_html(r);
+    ck_assert_ptr_nonnull(html);
+    const char *fault = html_check(html, strlen(html), &bad);
+    if (fault)
+        ck_abort_msg("%s: %.60s", fault, html + bad);
     const char *json = ohmen_report_json(r);
     ck_assert_ptr_nonnull(json);
     if (!json_check(json, strlen(json), &bad))

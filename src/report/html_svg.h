@@ -1,0 +1,41 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Drawing: the few elements of SVG 1.1 that the pictures are made of. Places are written
+ * in tenths of the picture's unit, without the locale's say. */
+#ifndef REPORT_HTML_SVG_H
+#define REPORT_HTML_SVG_H
+
+#include "report/html.h"
+#include "report/html_place.h"
+
+enum { SVG_WIDTH = 660, SVG_FONT = 12, SVG_LINE = 15 /* from line to line of text */ };
+
+/* x in tenths, as text: 12, 12.5, -0.3. buf: 32 bytes. */
+const char *svg_length(char *buf, double x);
+
+/* The element, its title and what it shows in words; closed by html_raw(h, "</svg>\n"). */
+void svg_open(struct html *h, int height, const char *title, const char *words);
+void svg_line(struct html *h, const char *class, double x1, double y1, double x2, double y2);
+/* anchor: "start", "middle" or "end", of the text's base line. */
+void svg_text(struct html *h, const char *class, double x, double y, const char *anchor,
+              const char *s);
+/* Text that rises (below 0: falls) by so many degrees around its anchor, the middle. */
+void svg_text_aslant(struct html *h, const char *class, double x, double y, int degrees,
+                     const char *s);
+/* A class of a line that looks like no other of the first six: "l0". */
+const char *svg_line_class(struct html *h, size_t i);
+/* A short piece of such a line with its symbol, for a key. */
+const char *svg_sample(struct html *h, const char *class, const char *symbol);
+/* At least the width of s in SVG_FONT on the usual fonts without serifs. s is clean. */
+double svg_text_width(const char *s);
+
+enum svg_shape { SVG_DISC, SVG_RING, SVG_DIAMOND };
+enum { SVG_MARK = 5 /* half the width of a mark */ };
+/* A mark with what it is, shown where a pointer rests on it. */
+void svg_mark(struct html *h, enum svg_shape shape, double x, double y, const char *words);
+/* A mark alone, for a key. */
+const char *svg_mark_sample(struct html *h, enum svg_shape shape);
+/* The label in its place, drawn from the end that is nearer to its mark, and a thin line to
+ * the mark where it is not beside it. */
+void svg_label(struct html *h, const char *s, const struct place_box *b, double x, double y);
+
+#endif

@@ -1,0 +1,160 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Random blocks full of nasty texts and numbers. */
+#include "report_test_random.h"
+
+#include <math.h>
+
+static const char *const nasty[] = {
+    "",
+    " ",
+    "   ",
+    "plain",
+    "H-BUS1",
+    "two words",
+    "\033[31mred\033[0m",
+    "tab\tand\nnewline\r",
+    "\xe2\x80\xae right to left \xe2\x80\xac",
+    "母線保護装置の不動作",
+    "e\xcc\x81\xcc\x81 combined",
+    "\xcc\x81",
+    "zero\xe2\x80\x8bwidth",
+    "\xf0\x9f\x98\x80 face",
+    "bad \xff\xc3 bytes",
+    "é",
+    "-1",
+    "=1+1",
+    "a_very_long_word_without_any_blank_that_is_wider_than_most_columns_of_a_table",
+    "many short words that must be wrapped on to several lines since they cannot all stand on one",
+    "\x7f\xc2\x85",
+    "wide 母 between",
+    "1e5",
+    "\xe2\x80\xa8separator",
+    "soft\xc2\xadhyphen",
+    "母",
+    "\xcc\x88母線",
+    "!",
+    "<script>alert(1)</script>",
+    "\"><img src=x onerror=alert(1)>",
+    "&amp; &lt; & <b> 'q' ]]> <!-- -->",
+    "http://example.org/x?a=1&b=2",
+    "\xd7\xa9\xd7\x9c\xd7\x95\xd7\x9d 12 \xd9\x85\xd8\xb1\xd8\xad\xd8\xa8\xd8\xa7",
+    "100 % \\u{1234} \"quoted\" 'x'"};
+
+static const double extremes[] = {
+    0, -0.0, 1, 1e-12, 5e-324, 1.7976931348623157e308, -3.5e-7, 123456789, 0.9999999, 99950, -1e15};
+
+const char *some_text(struct random *r)
+{
+    return random_pick(r, nasty);
+}
+
+static double some_number(struct random *r)
+{
+    return random_index(r, 3) ? random_log_uniform(r, 1e-9, 1e9) : random_pick(r, extremes);
+}
+
+static void add_some_cell(struct random *r, struct report *report, struct row *row, bool number)
+{
+    struct cell *c;
+    switch (random_index(r, 10)) {
+    case 0: c = row_empty(report, row); break;
+    case 1: c = row_count(report, row, random_next(r)); break;
+    case 2: c = row_yes(report, row, random_index(r, 2)); break;
+    case 3: c = row_date(report, row, "2027-03-31"); break;
+    case 4: c = row_text(report, row, some_text(r)); break;
+    default:
+        c = number ? row_number(report, row, some_number(r), "figure")
+                   : row_text(report, row, some_text(r));
+    }
+    if (random_index(r, 6) == 0)
+        c->mark = random_index(r, 3) ? "!" : some_text(r);
+}
+
+void add_some_table(struct random *r, struct report *report)
+{
+    struct block *b = report_table(report, "table", some_text(r));
+    bool number[12];
+    size_t columns = random_index(r, 12) + 1, rows = random_index(r, 6);
+    for (size_t j = 0; j < columns; j++) {
+        number[j] = random_index(r, 2);
+        struct column *c = block_column(report, b, arena_printf(report->arena, "k%zu", j),
+                                        some_text(r), random_index(r, 3) ? "EUR/a" : some_text(r),
+                                        (enum number_style)random_index(r, 6));
+        c->right = random_index(r, 2);
+        c->keep = (unsigned)random_index(r, 4);
+    }
+    for (size_t i = 0; i < rows; i++) {
+        struct row *row = block_row(report, b);
+        for (size_t j = 0; j < columns - random_index(r, 2); j++)
+            add_some_cell(r, report, row, number[j]);
+    }
+}
+
+void add_some_pairs(struct random *r, struct report *report)
+{
+    struct block *b = report_pairs(report, "pairs", some_text(r));
+    for (size_t i = random_index(r, 5); i-- > 0;) {
+        struct row *row = block_pair(report, b, some_text(r));
+        if (random_index(r, 2))
+            add_some_cell(r, report, row, false);
+        else
+            pair_number(report, row, some_number(r), some_text(r),
+                        (enum number_style)random_index(r, 6), NULL)
+                ->mark = some_text(r);
+    }
+}
+
+void add_some_grid(struct random *r, struct report *report)
+{
+    struct block *b =
+        report_grid(report, "grid", some_text(r), random_index(r, 2) ? "EUR" : some_text(r));
+    size_t n = random_index(r, 12);
+    for (size_t i = 0; i < n; i++) {
+        struct grid_mark *m = grid_add_mark(report, b, some_text(r), some_text(r),
+                                            fabs(some_number(r)), fabs(some_number(r)));
+        m->arrow_from = (int)random_index(r, n + 1) - 1;
+    }
+    for (size_t i = random_index(r, 3); i-- > 0;)
+        grid_add_line(report, b, some_text(r), random_log_uniform(r, 1e-3, 1e6), some_text(r));
+}
+
+static double drawable(double x)
+{
+    return fabs(x) <= 1e300 ? x : 2.385;
+}
+
+void add_some_curve(struct random *r, struct report *report)
+{
+    struct block *b = report_curve(report, "curve", some_text(r));
+    curve_set_x(report, b, "x", some_text(r), some_text(r), (enum number_style)random_index(r, 7))
+        ->log = random_index(r, 2);
+    struct curve_axis *y = curve_set_y(report, b, "y", some_text(r), some_text(r),
+                                       (enum number_style)random_index(r, 7));
+    y->log = random_index(r, 2);
+    y->from_data = random_index(r, 2);
+    for (size_t i = random_index(r, 4); i-- > 0;) {
+        struct curve_line *l = curve_add_line(report, b, some_text(r), some_text(r));
+        double x = drawable(some_number(r));
+        for (size_t k = random_index(r, 20); k-- > 0; x = fmax(x, drawable(some_number(r))))
+            curve_add_point(report, l, x, drawable(some_number(r)));
+    }
+    for (size_t i = random_index(r, 4); i-- > 0;)
+        curve_add_mark(report, b, some_text(r), drawable(some_number(r)), drawable(some_number(r)));
+}
+
+void fill_at_random(struct random *r, struct report *report)
+{
+    for (size_t i = random_index(r, 6) + 1; i-- > 0;) {
+        switch (random_index(r, 6)) {
+        case 0: report_heading(report, (int)random_index(r, 3) + 1, some_text(r)); break;
+        case 1:
+            report_note(report, "note", "%s %s\n  %s\n\n%s", some_text(r), some_text(r),
+                        some_text(r), some_text(r));
+            break;
+        case 2: add_some_pairs(r, report); break;
+        case 3: add_some_table(r, report); break;
+        case 4: add_some_grid(r, report); break;
+        case 5: add_some_curve(r, report); break;
+        }
+    }
+}
