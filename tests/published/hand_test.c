@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The hand calculations of docs/methods.md against the figures of the sample register
- * (hand.txt, which explains its rows, and the sample's folder on the command line). */
+/* The hand calculations of docs/methods.md against the figures of their register
+ * (hand.txt, which explains its rows, and the register's folder on the command line). */
 #include <check.h>
 #include <stdio.h>
 #include <string.h>
@@ -8,7 +8,7 @@
 #include "loaded.h"
 #include "rows.h"
 
-static const char *data_file, *sample;
+static const char *data_file, *documents;
 
 static double figure(char *inputs)
 {
@@ -16,7 +16,7 @@ static double figure(char *inputs)
     ck_assert_msg(perspective && name && !strtok(NULL, " "), "a perspective and a figure");
     struct arena *arena = arena_new(NULL);
     struct loaded l;
-    loaded_folder(&l, arena, sample, perspective);
+    loaded_folder(&l, arena, documents, perspective);
     double value = loaded_value(&l, name);
     arena_free(arena);
     return value;
@@ -33,7 +33,7 @@ START_TEST(all_in_one_graph)
 {
     struct arena *arena = arena_new(NULL);
     struct loaded l;
-    loaded_folder(&l, arena, sample, "society");
+    loaded_folder(&l, arena, documents, "society");
     figure_id net = loaded_find(&l, "D-VH-BUS.net-present-value.FIT-BLOCK");
     figure_id after = loaded_find(&l, "H-VH-BUS1.risk@FIT-BLOCK");
     figure_id risk = loaded_find(&l, "H-VH-BUS1.risk");
@@ -50,11 +50,11 @@ END_TEST
 int main(int argc, char **argv)
 {
     if (argc != 3) {
-        fprintf(stderr, "usage: %s hand.txt samples/skerry\n", argv[0]);
+        fprintf(stderr, "usage: %s hand.txt hand\n", argv[0]);
         return 2;
     }
     data_file = argv[1];
-    sample = argv[2];
+    documents = argv[2];
     Suite *s = suite_create("published hand calculations");
     TCase *t = tcase_create("hand");
     tcase_add_test(t, hand_calculations);
