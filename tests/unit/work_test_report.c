@@ -84,7 +84,7 @@ START_TEST(a_site_leaves_only_its_hazards)
     ck_assert_uint_eq(test_count(json, "\"hazard\": \"H-TQ-"), 4);
     q.site = "VH"; /* TQ lies in VH */
     json = hazards(&m, &q);
-    ck_assert_uint_eq(test_count(json, "{\"rank\": {"), 10);
+    ck_assert_uint_eq(test_count(json, "{\"rank\": {"), 16);
     ck_assert_uint_eq(test_count(json, "\"hazard\": \"H-TQ-"), 4);
     ck_assert_uint_eq(test_count(json, "\"hazard\": \"H-GU-"), 0);
     made_end(&m);
