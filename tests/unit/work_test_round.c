@@ -8,7 +8,7 @@
 #include "registers.h"
 #include "work_test.h"
 
-#define SEEDS 300
+#define SEEDS 100
 
 /* Exports `reg`, imports that into a new register, and compares. */
 static void expect_round(struct arena *a, const char *reg)
