@@ -107,9 +107,9 @@ static void put_note_title(struct html *h, const struct block *b, const char *id
 {
     if (!has_title(b))
         return;
-    text_printf(h->out, "<p id=\"%s\"><strong>", id);
+    text_printf(h->out, "<p class=\"title\" id=\"%s\">", id);
     html_text(h, b->title);
-    html_raw(h, "</strong></p>\n");
+    html_raw(h, "</p>\n");
 }
 
 static void put_note(struct html *h, const struct block *b, const char *id)

@@ -308,7 +308,7 @@ START_TEST(a_titled_note_is_where_the_contents_lead)
     const char *page = page_of_report();
     check_html(page);
     check_has(page, "<a href=\"#weak\">Weak points</a>");
-    check_has(page, "<p id=\"weak\"><strong>Weak points</strong></p>\n<p>Q1 &lt;alone&gt;</p>");
+    check_has(page, "<p class=\"title\" id=\"weak\">Weak points</p>\n<p>Q1 &lt;alone&gt;</p>");
 }
 END_TEST
 
