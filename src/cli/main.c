@@ -16,7 +16,7 @@ static void print_commands(void)
 {
     fputs("Usage: ohmen [-r FILE] COMMAND [OPTION...]\n\n", stderr);
     for (unsigned i = 0; i < n_commands; i++)
-        fprintf(stderr, "  %-12s%s\n", commands[i].name, commands[i].brief);
+        fprintf(stderr, "  %-15s%s\n", commands[i].name, commands[i].brief);
     fputc('\n', stderr);
 }
 

@@ -102,10 +102,21 @@ static void put_note_line(struct html *h, enum note_part *part, const char *s)
     html_text(h, s);
 }
 
-static void put_note(struct html *h, const struct block *b)
+/* A note may have a title, which the contents lead to. */
+static void put_note_title(struct html *h, const struct block *b, const char *id)
+{
+    if (!has_title(b))
+        return;
+    text_printf(h->out, "<p class=\"title\" id=\"%s\">", id);
+    html_text(h, b->title);
+    html_raw(h, "</p>\n");
+}
+
+static void put_note(struct html *h, const struct block *b, const char *id)
 {
     enum note_part part = NOTE_NOTHING;
     const char *s = b->text ? b->text : "";
+    put_note_title(h, b, id);
     while (*s) {
         size_t n = strcspn(s, "\n");
         put_note_line(h, &part, arena_strn(h->page.arena, s, n));
@@ -118,7 +129,7 @@ static void put_block(struct html *h, const struct block *b, const char *id)
 {
     switch (b->type) {
     case BLOCK_HEADING: put_heading(h, b, id); break;
-    case BLOCK_NOTE: put_note(h, b); break;
+    case BLOCK_NOTE: put_note(h, b, id); break;
     case BLOCK_PAIRS: html_pairs(h, b, id); break;
     case BLOCK_TABLE: html_table(h, b, id, b->title, NULL); break;
     case BLOCK_GRID: html_grid(h, b, id); break;

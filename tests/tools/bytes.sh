@@ -37,23 +37,18 @@ commands='report --ascii --width 100
 report --json
 report --csv
 report --html
-weigh D-VH-BUS --html
-report --json --perspective company
 hazards --ascii
-hazards --csv --site VH
-grid --ascii
-grid D-VH-BUS --json
-weigh D-VH-BUS --ascii
-weigh D-VH-BUS --json
+hazards --csv --site VH --perspective company
+protection --csv --site GU
+grid D-GU --json
 weigh D-TQ --json
+weigh D-TQ --html
 weigh D-GU --csv
 show H-TQ-BUS --json
 show VH-INC1 --ascii
 list values --json
 explain H-VH-BUS1.risk --json
 explain H-TQ-BUS.risk --csv
-explain D-VH-BUS.net-present-value.FIT-BLOCK --json
-explain D-TQ.present-damage.TQ-ARC --ascii
 history --json
 history H-VH-BUS1 --ascii
 verify --json
@@ -61,8 +56,8 @@ export
 export --observations
 schema
 help --markdown'
-unicode='report --width 120
-weigh D-TQ
+unicode='hazards --width 120
+weigh D-GU
 explain H-GU-CABLE.risk'
 
 complain()

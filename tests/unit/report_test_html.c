@@ -299,6 +299,19 @@ START_TEST(notes_are_paragraphs_and_kept_lines)
 }
 END_TEST
 
+START_TEST(a_titled_note_is_where_the_contents_lead)
+{
+    report_heading(&report, 2, "One");
+    report_heading(&report, 2, "Two");
+    report_heading(&report, 2, "Three");
+    report_note(&report, "weak", "Q1 <alone>")->title = "Weak points";
+    const char *page = page_of_report();
+    check_html(page);
+    check_has(page, "<a href=\"#weak\">Weak points</a>");
+    check_has(page, "<p class=\"title\" id=\"weak\">Weak points</p>\n<p>Q1 &lt;alone&gt;</p>");
+}
+END_TEST
+
 START_TEST(an_empty_report_is_a_page)
 {
     const char *page = page_of_report();
@@ -441,6 +454,7 @@ Suite *suite_report_html(void)
     tcase_add_test(t, cells_have_their_markup);
     tcase_add_test(t, ids_differ_and_the_contents_lead_to_them);
     tcase_add_test(t, notes_are_paragraphs_and_kept_lines);
+    tcase_add_test(t, a_titled_note_is_where_the_contents_lead);
     tcase_add_test(t, an_empty_report_is_a_page);
     tcase_add_test(t, marks_stand_at_their_logarithms);
     tcase_add_loop_test(t, labels_never_overlap, 0, 20);

@@ -104,6 +104,13 @@ const char *test_skerry(struct arena *a)
     return reg;
 }
 
+const char *test_mill(struct arena *a)
+{
+    const char *reg = test_new(a);
+    test_import_text(a, reg, test_read(a, "samples/mill-street.yaml"));
+    return reg;
+}
+
 struct test_state test_state(const char *reg)
 {
     struct test_state state;

@@ -31,6 +31,9 @@ ohmen_status test_import(const char *reg, const char *const *files, ohmen_report
 void test_import_text(struct arena *a, const char *reg, const char *yaml);
 /* A register that holds the sample network with its observations, in entry 1. */
 const char *test_skerry(struct arena *a);
+
+/* The same of the small sample samples/mill-street.yaml. */
+const char *test_mill(struct arena *a);
 /* The sample's files, NULL-terminated; the last one holds the observations. */
 const char *const *test_skerry_files(struct arena *a);
 

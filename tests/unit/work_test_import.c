@@ -28,10 +28,10 @@ START_TEST(the_first_import_adds_everything)
 {
     struct arena *a = test_arena();
     const char *json = import_json(a, test_new(a), test_skerry_files(a));
-    ck_assert_uint_eq(test_count(json, "{\"change\": \"added\""), 99);
-    ck_assert_uint_eq(test_count(json, "{\"date\": \""), 12);
-    ck_assert_ptr_nonnull(strstr(json, "entry 1: 99 objects added"));
-    ck_assert_ptr_nonnull(strstr(json, "12 observations added"));
+    ck_assert_uint_eq(test_count(json, "{\"change\": \"added\""), 161);
+    ck_assert_uint_eq(test_count(json, "{\"date\": \""), 20);
+    ck_assert_ptr_nonnull(strstr(json, "entry 1: 161 objects added"));
+    ck_assert_ptr_nonnull(strstr(json, "20 observations added"));
     arena_free(a);
 }
 END_TEST
