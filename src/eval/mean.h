@@ -38,7 +38,7 @@
  *
  * What a sample reaches: for moderate spread the printed error holds (95 % intervals of Student's t
  * with 15 degrees of freedom hold the mean in 94 % of cases). It is too small where the mean hangs
- * on what 256 points hardly meet: products of several inputs with error factors of 3 and more that
+ * on what 512 points hardly meet: products of several inputs with error factors of 3 and more that
  * enter twice, or combinations of atoms with a probability below 1e-3.
  *
  * Invariant: the same graph and names give the same bytes, whatever else the graph holds. Names
@@ -49,7 +49,7 @@
 #include "eval/eval.h"
 
 #define MEAN_SETS 16
-#define MEAN_STRATA 16
+#define MEAN_STRATA 32
 
 /* What the graph does not know of its inputs; `input` is the number of graph_input. */
 struct mean_source {

@@ -456,8 +456,44 @@ static bool find_share(const struct formula_inputs *inputs, const char *name, co
     return first_input(inputs, share, is_share, out);
 }
 
+/* Is `figure` SCHEME.asserts.CLASS.ELEMENT, with or without a variant? */
+static bool is_assertion(const char *figure, const char *element)
+{
+    const char *dot = strchr(figure, '.');
+    if (!dot || strncmp(dot, ".asserts.", 9) != 0)
+        return false;
+    dot = strchr(dot + 9, '.');
+    return dot && is_figure(dot + 1, element);
+}
+
+/* asserts.ELEMENT.fails: that it does not assert itself, where SCHEME.asserts.CLASS.ELEMENT says
+ * that it does. */
+static bool find_assertion(const struct formula_inputs *inputs, const char *name, long double *out)
+{
+    char element[NAME_BYTES];
+    long double asserts;
+    snprintf(element, sizeof element, "%.*s", (int)(strlen(name) - strlen(".fails")), name);
+    if (!first_input(inputs, element, is_assertion, &asserts))
+        return false;
+    *out = 1 - asserts;
+    return true;
+}
+
+/* up.FAILURE.fails: ELEMENT.in-repair, ELEMENT.in-repair.alone or CAUSE.in-repair.A.B */
+static bool find_repair(const struct formula_inputs *inputs, const char *name, long double *out)
+{
+    char figure[NAME_BYTES + 40];
+    int object = (int)strcspn(name, "."), rest = (int)(strlen(name) - strlen(".fails")) - object;
+    snprintf(figure, sizeof figure, "%.*s.in-repair%.*s", object, name, rest, name + object);
+    return first_input(inputs, figure, is_figure, out);
+}
+
 bool formula_find_input(void *ctx, const char *wanted, long double *out)
 {
+    if (strncmp(wanted, "asserts.", 8) == 0)
+        return find_assertion(ctx, wanted + 8, out);
+    if (strncmp(wanted, "up.", 3) == 0)
+        return find_repair(ctx, wanted + 3, out);
     if (strncmp(wanted, "sees.", 5) == 0)
         return find_share(ctx, wanted + 5, "sees", out);
     if (strncmp(wanted, "disabled.", 9) == 0)

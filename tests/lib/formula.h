@@ -32,7 +32,8 @@ struct formula_world {
      * Asked for names as they stand in the formula, such as H-BUS.risk.slow@A+B; for the
      * events in probability(...): the probability of failure as RELAY.fails, RELAY.fails.alone or
      * CAUSE.fails.RELAY.OTHER, the share of faults that a row sees as sees.ROW, and how likely
-     * a hazard puts an element out of action as disabled.RELAY; and for a leaf as its whole
+     * a hazard puts an element out of action as disabled.RELAY, that an element does not assert
+     * itself as asserts.RELAY.fails, and that it is in repair as up.RELAY.fails; and for a leaf as its whole
      * text, mean(median 1 h, error factor 3). */
     bool (*find)(void *ctx, const char *name, long double *out);
     /* The course of that name, RELAY.course.alone; false: it has none. Asked for in over(...),
@@ -50,8 +51,9 @@ bool formula_course(const char *formula, const struct formula_world *w, struct f
                     char error[FORMULA_ERROR]);
 
 /* A `find` for a list of figures: ctx is a struct formula_inputs. RELAY.fails is also
- * RELAY.fails@VARIANT, sees.ROW is HAZARD.share.ROW.sees with any variant, and disabled.RELAY
- * is HAZARD.share.RELAY.disabled. */
+ * RELAY.fails@VARIANT, sees.ROW is HAZARD.share.ROW.sees with any variant, disabled.RELAY
+ * is HAZARD.share.RELAY.disabled, up.RELAY.fails is RELAY.in-repair, and asserts.RELAY.fails is
+ * 1 less SCHEME.asserts.CLASS.RELAY. */
 struct formula_inputs {
     size_t n;
     const char *const *names;

@@ -168,6 +168,7 @@ END_TEST
 TCase *figure_hazard_case(void)
 {
     TCase *t = tcase_create("hazards");
+    tcase_set_timeout(t, 300);
     tcase_add_test(t, random_hazards);
     return t;
 }

@@ -669,7 +669,7 @@ END_TEST
 TCase *figure_time_case(void)
 {
     TCase *t = tcase_create("time");
-    tcase_set_timeout(t, 120);
+    tcase_set_timeout(t, 300);
     tcase_add_test(t, protection_in_time);
     return t;
 }
