@@ -214,6 +214,8 @@ struct figures {
     struct graph *graph;
     struct eval *eval;
     struct means *means;
+    bool points_only; /* figures are values at the means of what is unknown, not means: for who
+                         compares two ways to the same value */
     ARRAY(struct figure) list;
     ARRAY(struct compiled *) units;
     struct strmap compiled_by_key; /* "ID@A+B" -> struct compiled */

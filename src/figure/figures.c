@@ -206,7 +206,8 @@ const struct figure *figure_at(const struct figures *f, figure_id id)
 
 double figure_value(const struct figures *f, figure_id id)
 {
-    return means_value(f->means, f->list.at[id].node);
+    node_id n = f->list.at[id].node;
+    return f->points_only ? eval_value(f->eval, n) : means_value(f->means, n);
 }
 
 double figure_error(const struct figures *f, figure_id id)
@@ -305,7 +306,7 @@ ohmen_status figures_evaluate(struct figures *f, ohmen_error *e)
     node_id culprit = NODE_NONE;
     ohmen_error inner = OHMEN_ERROR_INIT;
     ohmen_status status = eval_point(f->eval, &culprit, &inner);
-    if (status == OHMEN_OK)
+    if (status == OHMEN_OK && !f->points_only)
         status = means_update(f->means, &culprit, &inner);
     if (status == OHMEN_COMPUTE && culprit != NODE_NONE)
         return not_finite(f, culprit, e);

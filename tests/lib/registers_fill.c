@@ -46,8 +46,9 @@ static const char *const involved[] = {
     "steady",         "disables",  "trips-on", "growth",
     "ageing",         NULL};
 /* Must agree with other fields: only where somebody puts them. */
-static const char *const agreed[] = {
-    "takes", "repair", "since", "when-known", "next", "revealed-by", "breaker-failure-of", NULL};
+static const char *const agreed[] = {"per-event",  "takes", "repair",      "since",
+                                     "when-known", "next",  "revealed-by", "breaker-failure-of",
+                                     NULL};
 
 static bool is_wanted(struct generator *g, const struct field *f)
 {
@@ -116,7 +117,10 @@ static struct node *some_names(struct generator *g, const struct field *f)
 
 static struct node *some_quantity(struct generator *g, const struct field *f)
 {
+    static const char *const intervals[] = {"6 month", "1 a", "2 a", "4 a", "6 a"};
     enum field_dim dim = f->dim == ANY ? NUMBER : f->dim;
+    if (text_equal(f->key ? f->key : "", "every")) /* not a test each second */
+        return make_scalar(g, random_pick(&g->random, intervals));
     if (f->flags & (CERTAIN | CONSTANT))
         return make_scalar(g, random_literal(g, dim));
     return random_quantity(g, dim);
