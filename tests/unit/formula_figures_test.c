@@ -171,6 +171,7 @@ static void expect_all(struct arena *a, const struct model *m, const char *persp
     struct figures *f;
     ohmen_error e = OHMEN_ERROR_INIT;
     ck_assert_int_eq(figures_new(a, m, perspective, date_of(2026, 12, 1), &f, &e), OHMEN_OK);
+    f->points_only = true; /* formulas are of values at the means */
     compile_all(f, m);
     for (figure_id id = 0; id < f->list.n; id++) {
         struct arena *scratch = arena_child(a);
@@ -190,28 +191,32 @@ static const char *source_file(struct arena *a, const char *path)
     return text;
 }
 
-static const struct model *load_sample(struct arena *a)
+static const struct model *load_folder(struct arena *a, const char *folder)
 {
     static const char *const files[] = {"register", "network", "hazards", "options", "decisions"};
     struct diags d;
     const struct node *roots[5];
     diags_init(&d, a);
     for (int i = 0; i < 5; i++) {
-        const char *path = arena_printf(a, "samples/skerry/%s.yaml", files[i]);
+        const char *path = arena_printf(a, "%s/%s.yaml", folder, files[i]);
         const char *text = source_file(a, path);
         roots[i] = yaml_read(a, path, text, strlen(text), &d);
     }
     return load(a, 5, roots);
 }
 
-START_TEST(formulas_of_the_sample)
+/* The register of the hand calculations; random ones have all that it has not. */
+#define SMALL "tests/published/hand"
+#define SAMPLE "samples/skerry"
+
+START_TEST(formulas_of_a_register)
 {
     struct arena *a = arena_new(NULL);
     struct counted c = {0};
-    expect_all(a, load_sample(a), NULL, &c);
-    expect_all(a, load_sample(a), "company", &c);
-    ck_assert_uint_gt(c.formulas, 500);
-    ck_assert_uint_gt(c.probabilities, 50);
+    expect_all(a, load_folder(a, SMALL), NULL, &c);
+    expect_all(a, load_folder(a, SMALL), "company", &c);
+    ck_assert_uint_gt(c.formulas, 200);
+    ck_assert_uint_gt(c.probabilities, 20);
     arena_free(a);
 }
 END_TEST
@@ -292,7 +297,7 @@ START_TEST(examples_of_the_page)
     struct arena *a = arena_new(NULL);
     struct figures *f;
     size_t count = 0;
-    ck_assert_int_eq(figures_new(a, load_sample(a), NULL, date_of(2026, 12, 1), &f, NULL),
+    ck_assert_int_eq(figures_new(a, load_folder(a, SAMPLE), NULL, date_of(2026, 12, 1), &f, NULL),
                      OHMEN_OK);
     for (const char *p = source_file(a, "docs/figures.md"); *p;) {
         size_t n = strcspn(p, "\n");
@@ -319,7 +324,7 @@ int main(int argc, char **argv)
     Suite *s = suite_create("formulas of figures");
     TCase *t = tcase_create("formulas");
     tcase_set_timeout(t, 300);
-    tcase_add_test(t, formulas_of_the_sample);
+    tcase_add_test(t, formulas_of_a_register);
     tcase_add_test(t, formulas_of_random_registers);
     tcase_add_test(t, page_has_every_property);
     tcase_add_test(t, examples_of_the_page);
