@@ -12,6 +12,7 @@ struct named {
     ohmen_register *reg;
     struct strmap seen; /* what was explained already */
     size_t compared;    /* figures whose value was compared */
+    size_t one_in;      /* of so many figures one is explained; 0: all */
 };
 
 static struct named named_new(const char *make(struct arena *a))
@@ -96,6 +97,8 @@ static void explain_all(struct named *n, const ohmen_query *q, ohmen_report *r)
         if (s[strlen(name) + 1] != '}' || strmap_has(&n->seen, name))
             continue; /* a column of texts, or known */
         strmap_set(n->a, &n->seen, name, n->a);
+        if (n->one_in && n->seen.n % n->one_in)
+            continue;
         double x = value_before(n, json, end, &unit);
         expect_value(n, explained(n, q, name), name, x, unit);
     }
@@ -119,6 +122,7 @@ END_TEST
 START_TEST(figures_of_protection)
 {
     struct named n = named_new(test_skerry);
+    n.one_in = 13;
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
     must(ohmen_protection(n.reg, NULL, &r, &e), &e);
@@ -132,6 +136,7 @@ END_TEST
 START_TEST(figures_of_a_perspective)
 {
     struct named n = named_new(test_skerry);
+    n.one_in = 13;
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
     ohmen_query q = ohmen_query_defaults();
@@ -149,6 +154,7 @@ START_TEST(figures_of_single_reports)
     static const char *const shown[] = {"H-VH-BUS1", "H-TQ-BUS", "H-GU-CABLE", "VH-51A",  "VH-INC1",
                                         "bus-fault", "vh-load",  "OC-EM",      "FIT-87B", "D-TQ"};
     struct named n = named_new(test_skerry);
+    n.one_in = 13;
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
     for (size_t i = 0; i < sizeof shown / sizeof *shown; i++) {
@@ -177,6 +183,8 @@ START_TEST(figures_of_a_derivation)
     for (const char *s = json; (s = strstr(s, mark)) != NULL; figures++) {
         s += sizeof mark - 1;
         const char *name = string_at(n.a, s);
+        if (figures % 31)
+            continue; /* each is a job of its own */
         const char *row = pick_string(n.a, explained(&n, NULL, name), "blocks/1/rows/0/figure");
         ck_assert_str_eq(row, name);
     }

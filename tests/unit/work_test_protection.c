@@ -506,6 +506,8 @@ END_TEST
 START_TEST(unwanted_operation)
 {
     static const char document[] =
+        "elements: {RX: {kind: relay, per-demand: 1 %, unwanted: {per-event: {inrush: 1 %, "
+        "through-fault: 1e-3}}}}\n"
         "values: {trips: {is: unwanted(FEEDER; inrush 3 per a)}}\n"
         "hazards:\n"
         "  H-TRIP:\n"
