@@ -130,7 +130,12 @@ check()
     fi
 }
 
+# Under a sanitizer one case in six is run (OHMEN_FEW): there the ways are searched for wrong
+# memory, not the outputs.
+turn=0
 for name in "$@"; do
+    turn=$((turn + 1))
+    [ -z "${OHMEN_FEW-}" ] || [ $((turn % 6)) -eq 0 ] || continue
     check "$name"
 done
 echo "Checks: $((passed + failed)), Failures: $failed, Errors: 0"
