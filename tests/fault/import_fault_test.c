@@ -86,7 +86,7 @@ static void scene_back(const struct scene *c)
     must(file_write(c->path, c->bytes, c->n, &e), &e);
 }
 
-/* Before: a small register of other things, which the sample joins. */
+/* Before: a small register of other things, which that of the hand calculations joins. */
 static struct scene scene_new(void)
 {
     static const char *const names[FILES] = {"register.yaml", "network.yaml",   "hazards.yaml",
@@ -101,7 +101,7 @@ static struct scene scene_new(void)
     content_of(c.path, c.before);
     must(file_read(c.a, c.path, 1 << 26, &c.bytes, &c.n, &e), &e);
     for (size_t i = 0; i < FILES; i++)
-        c.files[i] = arena_printf(c.a, "%s/samples/skerry/%s", source, names[i]);
+        c.files[i] = arena_printf(c.a, "%s/tests/published/hand/%s", source, names[i]);
     must(import_sample(&c, NULL, &e), &e);
     content_of(c.path, c.after);
     ck_assert_str_ne(c.before, c.after);
