@@ -33,7 +33,8 @@ struct formula_world {
      * events in probability(...): the probability of failure as RELAY.fails, RELAY.fails.alone or
      * CAUSE.fails.RELAY.OTHER, the share of faults that a row sees as sees.ROW, and how likely
      * a hazard puts an element out of action as disabled.RELAY, that an element does not assert
-     * itself as asserts.RELAY.fails, and that it is in repair as up.RELAY.fails; and for a leaf as its whole
+     * itself as asserts.RELAY.fails, and that it is in repair as up.RELAY.fails; and for a
+     * leaf as its whole
      * text, mean(median 1 h, error factor 3). */
     bool (*find)(void *ctx, const char *name, long double *out);
     /* The course of that name, RELAY.course.alone; false: it has none. Asked for in over(...),
