@@ -10,6 +10,7 @@
 #include "decide/alternatives.h"
 #include "decide/worth.h"
 #include "figure/compile.h"
+#include "figure/supply.h"
 
 /* --- hazards first --- */
 
@@ -58,10 +59,12 @@ static ohmen_status compile_hazards_under(struct figures *f, struct weighing *w,
                                           ohmen_error *e)
 {
     for (size_t i = 0; i < w->hazards.n; i++) {
-        const struct compiled *c = NULL;
+        const struct compiled *c = NULL, *part;
         ohmen_status status = OHMEN_OK;
         if (model_find(v->model, w->hazards.at[i].id))
             status = figures_compile(f, v, w->hazards.at[i].id, &c, e);
+        if (c)
+            status = figures_consequences(f, v, w->hazards.at[i].id, &part, e);
         if (status != OHMEN_OK)
             return status;
         if (out)
@@ -80,6 +83,70 @@ static ohmen_status compile_alternative_hazards(struct figures *f, struct weighi
         status = timeline_cut(f, x, w->horizon, stretches, e);
     for (size_t i = 0; status == OHMEN_OK && i < stretches->n; i++)
         status = compile_hazards_under(f, w, stretches->at[i].variant, NULL, e);
+    return status;
+}
+
+/* --- people --- */
+
+static bool harms(const struct figures *f, const struct compiled *hazard, const char *group)
+{
+    struct building under = {.figures = (struct figures *)f, .variant = hazard->variant};
+    const struct compiled *part = compiled_part(&under, hazard->id, PART_CONSEQUENCES);
+    return consequence_of(part, PROPERTY_DEATH, group) != NULL;
+}
+
+static bool is_harmed(const struct figures *f, const struct weighing *w, const char *group)
+{
+    for (size_t k = 0; k < w->alternatives.n; k++)
+        for (size_t i = 0; i < w->hazards.n; i++) {
+            const struct compiled *c = w->alternatives.at[k].hazards[i];
+            if (c && harms(f, c, group))
+                return true;
+        }
+    return false;
+}
+
+/* Every hazard of the register that can be computed. */
+static ohmen_status compile_register(struct figures *f, struct weighing *w, size_t *n,
+                                     const struct compiled **out, ohmen_error *e)
+{
+    const struct objects *all = &f->base->of[KIND_HAZARD];
+    const struct variant *base = w->alternatives.at[0].variant;
+    *n = 0;
+    for (size_t i = 0; i < all->n; i++) {
+        ohmen_error why = OHMEN_ERROR_INIT;
+        ohmen_status status = figures_compile(f, base, all->at[i]->id, &out[*n], &why);
+        if (status == OHMEN_OK)
+            (*n)++;
+        else if (status == OHMEN_COMPUTE)
+            *array_push(f->arena, &w->not_counted) =
+                (struct not_possible){all->at[i]->id, arena_str(f->arena, why.text)};
+        else
+            return error_set(e, status, "%s", why.text);
+    }
+    return OHMEN_OK;
+}
+
+/* The groups that matter here, and what their people bear now. */
+static ohmen_status find_groups(struct figures *f, struct weighing *w, ohmen_error *e)
+{
+    const struct objects *groups = &f->base->of[KIND_GROUP];
+    const struct compiled **hazards =
+        NEW_ARRAY(f->arena, f->base->of[KIND_HAZARD].n, const struct compiled *);
+    struct harm_to *people = NULL;
+    size_t n;
+    for (size_t i = 0; i < groups->n; i++)
+        if (is_harmed(f, w, groups->at[i]->id))
+            *array_push(f->arena, &w->groups) = (struct weighed_group){groups->at[i]->id, 0};
+    if (w->groups.n == 0)
+        return OHMEN_OK;
+    ohmen_status status = compile_register(f, w, &n, hazards, e);
+    if (status == OHMEN_OK)
+        status = figures_people(f, n, hazards, &people, e);
+    for (size_t i = 0; status == OHMEN_OK && i < w->groups.n; i++)
+        for (size_t k = 0; k < groups->n; k++)
+            if (text_equal(groups->at[k]->id, w->groups.at[i].id))
+                w->groups.at[i].now = people[k].death;
     return status;
 }
 
@@ -184,9 +251,15 @@ static ohmen_status compile_all(struct figures *f, struct weighing *w, ohmen_err
         return status;
     for (size_t i = 0; i < w->hazards.n; i++)
         w->hazards.at[i].now = w->alternatives.at[0].hazards[i];
+    status = find_groups(f, w, e);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(f, e);
+    if (status != OHMEN_OK)
+        return status;
+    worth_compile(f, w, base, stretches);
     status = figures_evaluate(f, e);
     if (status == OHMEN_OK)
-        worth_compile(f, w, base, stretches);
+        prices_compile(f, w);
     return status;
 }
 

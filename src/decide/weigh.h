@@ -17,7 +17,14 @@
  * - the damage that an alternative avoids is summed hazard by hazard: (risk now - risk then)
  *   times the annuity of the time in which the same options change the hazard;
  * - damage is summed over every hazard that any option of the decision reaches, and
- *   the hazards in its focus: the same for all alternatives. */
+ *   the hazards in its focus: the same for all alternatives;
+ * - customer time and deaths avoided are discounted as money is where they stand below a cost:
+ *   cost per customer hour = present cost / present customer time, which is the equivalent annual
+ *   cost over a mean year; net cost per fatality avoided = (present cost - benefit) / present
+ *   fatalities; disproportion = that over what society would spend per fatality (the factor of
+ *   HSE, Reducing risks, protecting people, 2001, Appendix 3, from memory);
+ * - the risk of a person is that over all hazards of the register, once the options are in
+ *   service. */
 #ifndef DECIDE_WEIGH_H
 #define DECIDE_WEIGH_H
 
@@ -25,15 +32,36 @@
 
 #define WEIGH_ALL 8 /* options of which all combinations are weighed: 256 alternatives */
 
+/* What an alternative is worth to one perspective of the register. */
+struct perspective_worth {
+    figure_id net, benefit, avoids; /* as those of the alternative */
+};
+
+/* Figures are FIGURE_NONE for doing nothing where nothing else is said. */
 struct alternative {
     const char *name; /* "do-nothing", "FIT-87B", "FIT-87B+TEST" */
     size_t n;
-    const char *const *options;    /* in byte order */
-    const struct variant *variant; /* all of them in service */
-    figure_id present_damage, present_cost, total;
-    figure_id net, benefit, ratio;   /* FIGURE_NONE for doing nothing; ratio also without cost */
+    const char *const *options;                    /* in byte order */
+    const struct variant *variant;                 /* all of them in service */
+    figure_id present_damage, present_cost, total; /* of doing nothing too */
+    figure_id net, benefit, ratio;                 /* ratio: only where it costs something */
+    figure_id avoids;                    /* risk avoided in a mean year, once all are in service */
+    struct perspective_worth *of;        /* by perspective of the register */
+    figure_id avoids_time, present_time; /* customer time without supply avoided */
+    figure_id avoids_fatalities, present_fatalities; /* only where weighing.groups is not empty */
+    figure_id *individual; /* by weighing.groups: risk of death of a person per year; of doing
+                              nothing too */
+    figure_id together; /* of combinations: worth beyond the options one by one; FIGURE_NONE where
+                              one of them is not possible alone */
+    figure_id per_hour, per_fatality, disproportion; /* FIGURE_NONE where nothing is avoided */
     const struct compiled **hazards; /* under `variant`, in the order of weighing.hazards */
     size_t rank;                     /* 1 is best; set by weigh_rank */
+};
+
+/* A group of people whom some weighed hazard may harm, now or under an alternative. */
+struct weighed_group {
+    const char *id;
+    figure_id now; /* risk of death of a person per year, over all hazards of the register */
 };
 
 struct weighed_hazard {
@@ -42,9 +70,9 @@ struct weighed_hazard {
     const struct compiled *now;
 };
 
-/* Why a set of options is no alternative. */
+/* Why a set of options is no alternative, or a hazard is not counted. */
 struct not_possible {
-    const char *options; /* "A+B" */
+    const char *options; /* "A+B"; the hazard */
     const char *why;
 };
 
@@ -54,6 +82,10 @@ struct weighing {
     const struct compiled *unit; /* the decision's own section */
     double horizon;              /* years */
     ARRAY(struct weighed_hazard) hazards;
+    ARRAY(struct weighed_group) groups; /* in byte order */
+    ARRAY(struct not_possible)
+    not_counted;                            /* hazards that cannot be computed: the risks of groups
+                                               leave them out */
     ARRAY(struct alternative) alternatives; /* doing nothing first, then by size and name */
     ARRAY(struct not_possible) left_out;
     bool only_pairs;

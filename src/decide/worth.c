@@ -1,153 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The section of a decision: present values of damage and cost for each alternative.
- * All hazards and options that it reads were compiled before. */
+ * Beside the
+ * money that the chosen perspective bears: what every perspective bears, customers without supply,
+ * deaths. All hazards and options that it reads were compiled before. */
 #include "decide/worth.h"
 
-#include <math.h>
-
-#include "figure/compile.h"
-
-struct worth {
-    struct figures *f;
-    struct weighing *w;
-    struct building b;
-    node_id rate;     /* interest per year as a pure number */
-    node_id one_year; /* 1 a */
-};
-
-static node_id annuity(struct worth *x, double from, double to)
-{
-    struct graph *g = x->f->graph;
-    node_id years = graph_annuity(g, x->rate, compile_const(&x->b, from, dim_number, NULL),
-                                  compile_const(&x->b, to, dim_number, NULL));
-    return graph_op2(g, OP_MULTIPLY, years, x->one_year);
-}
-
-static node_id sum(struct worth *x, size_t n, const node_id *nodes, struct dim d)
-{
-    if (n == 0)
-        return compile_const(&x->b, 0, d, NULL);
-    return n == 1 ? nodes[0] : graph_op(x->f->graph, OP_SUM, n, nodes);
-}
-
-static const struct hazard_exports *exports_of(const struct compiled *hazard)
-{
-    return hazard->exports;
-}
-
-/* Does its risk change from year to year? */
-static bool is_yearly(const struct compiled *hazard)
-{
-    return hazard && exports_of(hazard)->of_year;
-}
-
-/* Present value of the damage of a hazard whose risk is one of each year. */
-static node_id yearly_damage(struct worth *x, const struct compiled *hazard, double from, double to)
-{
-    struct figures *f = x->f;
-    const struct hazard_exports *h = exports_of(hazard);
-    node_id *risks = NEW_ARRAY(f->arena, h->n_yearly, node_id);
-    for (size_t i = 0; i < h->n_yearly; i++)
-        risks[i] = figure_at(f, h->yearly[i])->node;
-    struct years y = {.from = from, .to = to, .of_year = h->of_year + (size_t)floor(from)};
-    y.n_years = to > from ? (size_t)(ceil(to) - floor(from)) : 0;
-    node_id sum = graph_years(f->graph, x->rate, h->n_yearly, risks, &y);
-    return graph_op2(f->graph, OP_MULTIPLY, sum, x->one_year);
-}
-
-static node_id risk_node(const struct worth *x, const struct compiled *hazard)
-{
-    return figure_at(x->f, hazard->main)->node;
-}
-
-/* Damage of one hazard over a stretch; NODE_NONE where it is not there. */
-static node_id damage_over(struct worth *x, const struct compiled *hazard, double from, double to)
-{
-    if (!hazard)
-        return NODE_NONE;
-    if (is_yearly(hazard))
-        return yearly_damage(x, hazard, from, to);
-    return graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, from, to), risk_node(x, hazard));
-}
-
-/* Damage over the horizon as the register is now: hazards whose risk stays take one annuity
- * together. */
-static node_id damage_now(struct worth *x)
-{
-    node_id *risks = NEW_ARRAY(x->f->arena, x->w->hazards.n, node_id);
-    node_id *parts = NEW_ARRAY(x->f->arena, x->w->hazards.n + 1, node_id);
-    size_t n = 0, n_parts = 0;
-    for (size_t i = 0; i < x->w->hazards.n; i++) {
-        const struct compiled *now = x->w->hazards.at[i].now;
-        if (now && is_yearly(now))
-            parts[n_parts++] = yearly_damage(x, now, 0, x->w->horizon);
-        else if (now)
-            risks[n++] = risk_node(x, now);
-    }
-    if (n > 0 || n_parts == 0)
-        parts[n_parts++] = graph_op2(x->f->graph, OP_MULTIPLY, annuity(x, 0, x->w->horizon),
-                                     sum(x, n, risks, dim_money_rate));
-    return sum(x, n_parts, parts, dim_money);
-}
-
-/* The hazard under a variant; NULL where that has no such hazard. */
-static const struct compiled *hazard_under(struct worth *x, const struct variant *v, const char *id)
-{
-    struct building under = {.figures = x->f, .variant = v};
-    return model_find(v->model, id) ? compiled_of(&under, id) : NULL;
-}
-
-/* Risk before less risk after, of hazards whose risk stays; one that is not there has none.
- * Never both NULL. */
-static node_id risk_avoided(struct worth *x, const struct compiled *before,
-                            const struct compiled *after)
-{
-    if (!after)
-        return risk_node(x, before);
-    if (!before)
-        return graph_op1(x->f->graph, OP_NEGATE, risk_node(x, after));
-    return graph_op2(x->f->graph, OP_SUBTRACT, risk_node(x, before), risk_node(x, after));
-}
-
-/* Damage before less damage after over a stretch. */
-static node_id damage_avoided(struct worth *x, const struct compiled *before,
-                              const struct compiled *after, double from, double to)
-{
-    struct graph *g = x->f->graph;
-    if (!is_yearly(before) && !is_yearly(after))
-        return graph_op2(g, OP_MULTIPLY, annuity(x, from, to), risk_avoided(x, before, after));
-    node_id was = damage_over(x, before, from, to), is = damage_over(x, after, from, to);
-    if (is == NODE_NONE)
-        return was;
-    return was == NODE_NONE ? graph_op1(g, OP_NEGATE, is) : graph_op2(g, OP_SUBTRACT, was, is);
-}
-
-struct nodes ARRAY_BODY(node_id);
-
-/* Appends what is avoided of one hazard: one term for each time in which the same options
- * change it. Times of options that do not reach it do not cut it, so that options on
- * different hazards are worth together what they are worth alone. */
-static void add_avoided(struct worth *x, const struct weighed_hazard *h, const struct stretches *s,
-                        struct nodes *parts)
-{
-    for (size_t i = 0, end; i < s->n; i = end) {
-        const struct compiled *then = hazard_under(x, s->at[i].variant, h->id);
-        end = i + 1;
-        while (end < s->n && hazard_under(x, s->at[end].variant, h->id) == then)
-            end++;
-        if (then != h->now)
-            *array_push(x->f->arena, parts) =
-                damage_avoided(x, h->now, then, s->at[i].from, s->at[end - 1].to);
-    }
-}
-
-static node_id avoided_damage(struct worth *x, const struct stretches *s)
-{
-    struct nodes parts = {0};
-    for (size_t i = 0; i < x->w->hazards.n; i++)
-        add_avoided(x, &x->w->hazards.at[i], s, &parts);
-    return sum(x, parts.n, parts.at, dim_money);
-}
+#include "decide/avoided.h"
 
 /* (1 + rate)^-years */
 static node_id discount_factor(struct worth *x, double years)
@@ -180,8 +38,8 @@ static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
     }
     struct service s = timeline_service(x->f, id, x->w->horizon);
     if (running != FIGURE_NONE && s.from < s.to)
-        parts[(*n)++] =
-            graph_op2(g, OP_MULTIPLY, figure_at(x->f, running)->node, annuity(x, s.from, s.to));
+        parts[(*n)++] = graph_op2(g, OP_MULTIPLY, figure_at(x->f, running)->node,
+                                  worth_annuity(x, s.from, s.to));
 }
 
 /* Does it cost anything within the horizon? The options' own figures have values already. */
@@ -209,33 +67,155 @@ static node_id present_cost(struct worth *x, const struct alternative *alt)
     size_t n = 0;
     for (size_t i = 0; i < alt->n; i++)
         add_cost(x, alt->options[i], parts, &n);
-    return sum(x, n, parts, dim_money);
+    return worth_sum(x, n, parts, dim_money);
+}
+
+/* --- what is avoided --- */
+
+static struct measure measure_of(enum property p, const char *of)
+{
+    struct measure m = {p, of, dim_money_rate, dim_money};
+    if (p == PROPERTY_CUSTOMER_TIME)
+        m.dim = m.sum = dim_time;
+    if (p == PROPERTY_FATALITIES || p == PROPERTY_DEATH) {
+        m.dim = dim_frequency;
+        m.sum = dim_number;
+    }
+    return m;
+}
+
+static node_id node_of(const struct worth *x, figure_id id)
+{
+    return figure_at(x->f, id)->node;
+}
+
+static figure_id add(struct worth *x, enum property p, const struct alternative *alt,
+                     const char *of, node_id n)
+{
+    return compiled_add(&x->b, p, alt->name, of, n, NULL, NULL);
+}
+
+/* What each perspective of the register makes of an alternative: who pays for it bears its cost,
+ * and the cost is a cost to society too. */
+static void add_perspectives(struct worth *x, struct alternative *alt, const struct stretches *s)
+{
+    const struct rows *rows = &x->f->base->settings->perspectives;
+    alt->of = NEW_ARRAY(x->f->arena, rows->n, struct perspective_worth);
+    for (size_t i = 0; alt->n && i < rows->n; i++) {
+        struct measure m = measure_of(PROPERTY_BORNE, rows->keys[i]);
+        struct perspective_worth *of = &alt->of[i];
+        node_id benefit = measure_avoided(x, &m, s);
+        node_id net = graph_op2(x->f->graph, OP_SUBTRACT, benefit, node_of(x, alt->present_cost));
+        of->benefit = add(x, PROPERTY_BENEFIT, alt, rows->keys[i], benefit);
+        of->net = add(x, PROPERTY_NET, alt, rows->keys[i], net);
+        of->avoids =
+            add(x, PROPERTY_AVOIDS, alt, rows->keys[i], measure_avoided_yearly(x, &m, alt));
+    }
+}
+
+static void add_supply(struct worth *x, struct alternative *alt, const struct stretches *s)
+{
+    struct measure m = measure_of(PROPERTY_CUSTOMER_TIME, NULL);
+    alt->avoids_time = add(x, PROPERTY_AVOIDS_TIME, alt, NULL, measure_avoided_yearly(x, &m, alt));
+    alt->present_time = add(x, PROPERTY_PRESENT_TIME, alt, NULL, measure_avoided(x, &m, s));
+}
+
+static node_id over_groups(struct worth *x, const struct alternative *alt,
+                           const struct stretches *s)
+{
+    struct measure m = measure_of(PROPERTY_FATALITIES, NULL);
+    node_id *nodes = NEW_ARRAY(x->f->arena, x->w->groups.n, node_id);
+    for (size_t i = 0; i < x->w->groups.n; i++) {
+        m.of = x->w->groups.at[i].id;
+        nodes[i] = s ? measure_avoided(x, &m, s) : measure_avoided_yearly(x, &m, alt);
+    }
+    return worth_sum(x, x->w->groups.n, nodes, s ? m.sum : m.dim);
+}
+
+/* Risk of a person over all hazards of the register, under the alternative. */
+static void add_people(struct worth *x, struct alternative *alt, const struct stretches *s)
+{
+    struct measure m = measure_of(PROPERTY_DEATH, NULL);
+    alt->individual = NEW_ARRAY(x->f->arena, x->w->groups.n, figure_id);
+    if (x->w->groups.n == 0)
+        return;
+    for (size_t i = 0; i < x->w->groups.n; i++) {
+        m.of = x->w->groups.at[i].id;
+        node_id risk_now = node_of(x, x->w->groups.at[i].now);
+        alt->individual[i] = x->w->groups.at[i].now;
+        if (alt->n)
+            alt->individual[i] = add(
+                x, PROPERTY_DEATH, alt, m.of,
+                graph_op2(x->f->graph, OP_SUBTRACT, risk_now, measure_avoided_yearly(x, &m, alt)));
+    }
+    if (alt->n == 0)
+        return;
+    alt->avoids_fatalities =
+        add(x, PROPERTY_AVOIDS_FATALITIES, alt, NULL, over_groups(x, alt, NULL));
+    alt->present_fatalities =
+        add(x, PROPERTY_PRESENT_FATALITIES, alt, NULL, over_groups(x, alt, s));
+}
+
+/* --- the whole --- */
+
+static void add_money(struct worth *x, struct alternative *alt, const struct stretches *s)
+{
+    struct graph *g = x->f->graph;
+    const struct alternative *nothing = &x->w->alternatives.at[0];
+    struct measure m = measure_of(PROPERTY_RISK, NULL);
+    node_id benefit = measure_avoided(x, &m, s), cost = present_cost(x, alt), damage;
+    if (alt->n == 0)
+        damage = measure_now(x, &m);
+    else
+        damage = graph_op2(g, OP_SUBTRACT, node_of(x, nothing->present_damage), benefit);
+    node_id total = graph_op2(g, OP_ADD, damage, cost);
+    alt->present_damage = add(x, PROPERTY_PRESENT_DAMAGE, alt, NULL, damage);
+    alt->present_cost = add(x, PROPERTY_PRESENT_COST, alt, NULL, cost);
+    alt->total = add(x, PROPERTY_TOTAL, alt, NULL, total);
+    if (alt->n == 0)
+        return;
+    node_id net = graph_op2(g, OP_SUBTRACT, benefit, cost);
+    alt->benefit = add(x, PROPERTY_BENEFIT, alt, NULL, benefit);
+    alt->net = add(x, PROPERTY_NET, alt, NULL, net);
+    alt->avoids = add(x, PROPERTY_AVOIDS, alt, NULL, measure_avoided_yearly(x, &m, alt));
+    if (costs_something(x, alt))
+        alt->ratio = add(x, PROPERTY_RATIO, alt, NULL, ratio_of_means(&x->b, benefit, cost));
 }
 
 static void add_alternative(struct worth *x, struct alternative *alt, const struct stretches *s)
 {
-    struct graph *g = x->f->graph;
-    struct building *b = &x->b;
-    const struct alternative *nothing = &x->w->alternatives.at[0];
-    node_id benefit = avoided_damage(x, s), cost = present_cost(x, alt), damage;
-    if (alt->n == 0)
-        damage = damage_now(x);
-    else
-        damage = graph_op2(g, OP_SUBTRACT, figure_at(x->f, nothing->present_damage)->node, benefit);
-    node_id total = graph_op2(g, OP_ADD, damage, cost);
-    alt->present_damage =
-        compiled_add(b, PROPERTY_PRESENT_DAMAGE, alt->name, NULL, damage, NULL, NULL);
-    alt->present_cost = compiled_add(b, PROPERTY_PRESENT_COST, alt->name, NULL, cost, NULL, NULL);
-    alt->total = compiled_add(b, PROPERTY_TOTAL, alt->name, NULL, total, NULL, NULL);
-    alt->net = alt->benefit = alt->ratio = FIGURE_NONE;
-    if (alt->n == 0)
-        return;
-    node_id net = graph_op2(g, OP_SUBTRACT, benefit, cost);
-    alt->benefit = compiled_add(b, PROPERTY_BENEFIT, alt->name, NULL, benefit, NULL, NULL);
-    alt->net = compiled_add(b, PROPERTY_NET, alt->name, NULL, net, NULL, NULL);
-    if (costs_something(x, alt))
-        alt->ratio = compiled_add(b, PROPERTY_RATIO, alt->name, NULL,
-                                  ratio_of_means(b, benefit, cost), NULL, NULL);
+    alternative_clear(alt);
+    add_money(x, alt, s);
+    add_perspectives(x, alt, s);
+    if (alt->n)
+        add_supply(x, alt, s);
+    add_people(x, alt, s);
+}
+
+/* --- options together --- */
+
+static const struct alternative *alternative_alone(const struct weighing *w, const char *option)
+{
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        if (w->alternatives.at[i].n == 1 && text_equal(w->alternatives.at[i].options[0], option))
+            return &w->alternatives.at[i];
+    return NULL;
+}
+
+/* What a combination is worth beyond its options one by one; not where one of them is not possible
+ * alone. */
+static void add_together(struct worth *x, struct alternative *alt)
+{
+    node_id *alone = NEW_ARRAY(x->f->arena, alt->n, node_id);
+    for (size_t i = 0; i < alt->n; i++) {
+        const struct alternative *one = alternative_alone(x->w, alt->options[i]);
+        if (!one)
+            return;
+        alone[i] = node_of(x, one->net);
+    }
+    node_id apart = worth_sum(x, alt->n, alone, dim_money);
+    alt->together = add(x, PROPERTY_TOGETHER, alt, NULL,
+                        graph_op2(x->f->graph, OP_SUBTRACT, node_of(x, alt->net), apart));
 }
 
 void worth_compile(struct figures *f, struct weighing *w, const struct variant *base,
@@ -249,6 +229,9 @@ void worth_compile(struct figures *f, struct weighing *w, const struct variant *
     x.rate = graph_op2(f->graph, OP_MULTIPLY, figure_at(f, discount)->node, x.one_year);
     for (size_t i = 0; i < w->alternatives.n; i++)
         add_alternative(&x, &w->alternatives.at[i], &stretches[i]);
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        if (w->alternatives.at[i].n > 1)
+            add_together(&x, &w->alternatives.at[i]);
     x.b.unit->exports = w;
     compiled_end(&x.b);
     w->unit = x.b.unit;

@@ -10,4 +10,12 @@
 void worth_compile(struct figures *f, struct weighing *w, const struct variant *base,
                    const struct stretches *stretches);
 
+/* Behind it, once that section has values: what a customer hour and a life cost, of those
+ * alternatives that avoid any. A part of the unit. */
+void prices_compile(struct figures *f, struct weighing *w);
+#define PART_PRICES "prices"
+
+/* All figures of an alternative: none. */
+void alternative_clear(struct alternative *x);
+
 #endif

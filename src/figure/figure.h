@@ -88,6 +88,22 @@
     X(TOTAL, "total", "present value of damage and cost together")                                 \
     X(NET, "net-present-value", "what an alternative is worth against doing nothing")              \
     X(BENEFIT, "benefit", "present value of the damage that an alternative avoids")                \
+    X(AVOIDS, "avoids", "risk that an alternative avoids in a mean year, once in service")         \
+    X(AVOIDS_TIME, "avoids-customer-time",                                                         \
+      "customer time without supply that an alternative avoids in a mean year")                    \
+    X(AVOIDS_FATALITIES, "avoids-fatalities", "deaths that an alternative avoids in a mean year")  \
+    X(PRESENT_TIME, "present-customer-time",                                                       \
+      "customer time that an alternative avoids over the horizon, discounted")                     \
+    X(PRESENT_FATALITIES, "present-fatalities",                                                    \
+      "deaths that an alternative avoids over the horizon, discounted")                            \
+    X(PER_HOUR, "cost-per-customer-hour", "present cost over the customer time that it avoids")    \
+    X(PER_FATALITY, "net-cost-per-fatality",                                                       \
+      "present cost less benefit, over the deaths that it avoids")                                 \
+    X(DISPROPORTION, "disproportion",                                                              \
+      "net cost over what society would spend on the deaths that it avoids; of the register: the " \
+      "limit of that")                                                                             \
+    X(FATALITY_WORTH, "per-fatality", "what society would spend to avoid one expected death")      \
+    X(TOGETHER, "together", "what options are worth together beyond what each is worth alone")     \
     X(RATIO, "benefit-cost-ratio", "avoided damage over cost, as present values")
 
 enum property {

@@ -301,6 +301,20 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
 
 /* --- the settings as a unit --- */
 
+static void add_setting(struct building *b, enum property p, const struct quantity *q)
+{
+    if (q)
+        compiled_add(b, p, NULL, NULL, compile_quantity(b, q), NULL, quantity_reads(b->figures, q));
+}
+
+static void add_people_criteria(struct building *b, const struct people_criteria *c)
+{
+    if (!c)
+        return;
+    add_setting(b, PROPERTY_FATALITY_WORTH, c->per_fatality);
+    add_setting(b, PROPERTY_DISPROPORTION, c->disproportion);
+}
+
 const struct compiled *figures_settings(struct figures *f)
 {
     const struct compiled *known = strmap_get(&f->compiled_by_key, REGISTER_ID);
@@ -312,6 +326,7 @@ const struct compiled *figures_settings(struct figures *f)
     compiled_begin(f, base, model_find(f->base, REGISTER_ID), REGISTER_ID, &b);
     compiled_add(&b, PROPERTY_DISCOUNT, NULL, NULL, compile_quantity(&b, s->discount), NULL,
                  quantity_reads(f, s->discount));
+    add_people_criteria(&b, s->criteria ? s->criteria->people : NULL);
     compiled_end(&b);
     return b.unit;
 }

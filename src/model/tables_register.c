@@ -30,10 +30,10 @@ static const struct field people_criteria_fields[] = {
       .flags = CERTAIN | POSITIVE | CONSTANT | LATER),
     F(struct people_criteria, disproportion, "disproportion", QUANTITY,
       "How many times its benefit a measure may cost before it is grossly disproportionate",
-      .dim = NUMBER, .flags = CERTAIN | POSITIVE | CONSTANT | LATER),
+      .dim = NUMBER, .flags = CERTAIN | POSITIVE | CONSTANT),
     F(struct people_criteria, per_fatality, "per-fatality", QUANTITY,
       "Money that society would spend to avoid one expected fatality", .dim = MONEY,
-      .flags = CERTAIN | POSITIVE | CONSTANT | LATER),
+      .flags = CERTAIN | POSITIVE | CONSTANT),
 };
 static const struct table table_people_criteria = TABLE(
     struct people_criteria, "people criteria", people_criteria_fields, "Limits of risk to people");
