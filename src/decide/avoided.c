@@ -22,17 +22,6 @@ node_id worth_sum(struct worth *x, size_t n, const node_id *nodes, struct dim d)
     return n == 1 ? nodes[0] : graph_op(x->f->graph, OP_SUM, n, nodes);
 }
 
-node_id worth_years(struct worth *x, double from, double to)
-{
-    return graph_annuity(x->f->graph, x->rate, compile_const(&x->b, from, dim_number, NULL),
-                         compile_const(&x->b, to, dim_number, NULL));
-}
-
-node_id worth_annuity(struct worth *x, double from, double to)
-{
-    return graph_op2(x->f->graph, OP_MULTIPLY, worth_years(x, from, to), x->one_year);
-}
-
 /* --- one hazard --- */
 
 static struct doing of_risk(const struct worth *x, const struct compiled *hazard)
@@ -65,9 +54,18 @@ static bool is_per_time(const struct measure *m)
     return !dim_equal(m->dim, m->sum);
 }
 
-static node_id in_time(struct worth *x, const struct measure *m, node_id years)
+/* What is counted by the year is that per time, over time. */
+static node_id as_counted(struct worth *x, const struct measure *m, node_id worth)
 {
-    return is_per_time(m) ? graph_op2(x->f->graph, OP_MULTIPLY, years, x->one_year) : years;
+    return is_per_time(m) ? worth : graph_op2(x->f->graph, OP_DIVIDE, worth, x->money.one_year);
+}
+
+/* The same in each year between two times. */
+static node_id steadily(struct worth *x, const struct measure *m, node_id each, double from,
+                        double to)
+{
+    node_id years = money_annuity(&x->money, from, to);
+    return as_counted(x, m, graph_op2(x->f->graph, OP_MULTIPLY, years, each));
 }
 
 /* Present value of what is one of each year. */
@@ -79,7 +77,7 @@ static node_id by_year(struct worth *x, const struct measure *m, const struct do
         nodes[i] = figure_at(x->f, d->yearly[i])->node;
     struct years y = {.from = from, .to = to, .of_year = d->of_year + (size_t)floor(from)};
     y.n_years = to > from ? (size_t)(ceil(to) - floor(from)) : 0;
-    return in_time(x, m, graph_years(x->f->graph, x->rate, d->n, nodes, &y));
+    return as_counted(x, m, money_years(&x->money, d->n, nodes, &y));
 }
 
 /* NODE_NONE where nothing is done. */
@@ -90,7 +88,7 @@ static node_id over(struct worth *x, const struct measure *m, const struct doing
         return NODE_NONE;
     if (d->of_year)
         return by_year(x, m, d, from, to);
-    return graph_op2(x->f->graph, OP_MULTIPLY, in_time(x, m, worth_years(x, from, to)), d->mean);
+    return steadily(x, m, d->mean, from, to);
 }
 
 /* before - after, either of which may be nothing, but not both. */
@@ -118,9 +116,7 @@ node_id measure_now(struct worth *x, const struct measure *m)
             alike[n++] = d.mean;
     }
     if (n > 0 || n_parts == 0)
-        parts[n_parts++] =
-            graph_op2(x->f->graph, OP_MULTIPLY, in_time(x, m, worth_years(x, 0, x->w->horizon)),
-                      worth_sum(x, n, alike, m->dim));
+        parts[n_parts++] = steadily(x, m, worth_sum(x, n, alike, m->dim), 0, x->w->horizon);
     return worth_sum(x, n_parts, parts, m->sum);
 }
 
@@ -144,8 +140,7 @@ static void add_between(struct worth *x, const struct measure *m, const struct c
     if (p.of_year || q.of_year)
         avoided = less(x, over(x, m, &p, from, to), over(x, m, &q, from, to));
     else
-        avoided = graph_op2(x->f->graph, OP_MULTIPLY, in_time(x, m, worth_years(x, from, to)),
-                            less(x, p.mean, q.mean));
+        avoided = steadily(x, m, less(x, p.mean, q.mean), from, to);
     *array_push(x->f->arena, out) = avoided;
 }
 

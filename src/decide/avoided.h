@@ -7,16 +7,15 @@
 #ifndef DECIDE_AVOIDED_H
 #define DECIDE_AVOIDED_H
 
+#include "decide/money.h"
 #include "decide/timeline.h"
-#include "figure/compile.h"
 
 /* The section of a decision under construction, and what all its terms need. */
 struct worth {
     struct figures *f;
     struct weighing *w;
     struct building b;
-    node_id rate;     /* interest per year as a pure number */
-    node_id one_year; /* 1 a */
+    struct money money;
 };
 
 /* What is summed: PROPERTY_RISK as the chosen perspective bears it, or an effect of
@@ -28,9 +27,6 @@ struct measure {
     struct dim sum; /* of a sum over time: dim x time, or dim for what is counted by the year */
 };
 
-/* 1 a year between two times, as a present value: years, or a time. */
-node_id worth_years(struct worth *x, double from, double to);
-node_id worth_annuity(struct worth *x, double from, double to);
 node_id worth_sum(struct worth *x, size_t n, const node_id *nodes, struct dim d);
 
 /* Over the horizon as the register is now: hazards whose measure stays take one annuity

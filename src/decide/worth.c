@@ -6,69 +6,7 @@
 #include "decide/worth.h"
 
 #include "decide/avoided.h"
-
-/* (1 + rate)^-years */
-static node_id discount_factor(struct worth *x, double years)
-{
-    struct graph *g = x->f->graph;
-    node_id base = graph_op2(g, OP_ADD, compile_const(&x->b, 1, dim_number, NULL), x->rate);
-    return graph_op2(g, OP_POWER, base, compile_const(&x->b, -years, dim_number, NULL));
-}
-
-/* The year in which an option's investment is paid; the horizon's end or later: not within
- * it. */
-static double year_of_investment(const struct worth *x, const struct option *o)
-{
-    return o->invest->on == DAY_NONE ? 0 : timeline_year(x->f->base->settings, o->invest->on);
-}
-
-/* Appends the present values of an option's investment and running cost. */
-static void add_cost(struct worth *x, const char *id, node_id *parts, size_t *n)
-{
-    struct graph *g = x->f->graph;
-    const struct option *o = model_get(x->f->base, KIND_OPTION, id);
-    const struct compiled *c = compiled_of(&x->b, id);
-    figure_id invest = compiled_figure(x->f, c, PROPERTY_INVEST, NULL, NULL);
-    figure_id running = compiled_figure(x->f, c, PROPERTY_RUNNING, NULL, NULL);
-    if (invest != FIGURE_NONE && year_of_investment(x, o) < x->w->horizon) {
-        double year = year_of_investment(x, o);
-        node_id node = figure_at(x->f, invest)->node;
-        parts[(*n)++] =
-            year == 0 ? node : graph_op2(g, OP_MULTIPLY, node, discount_factor(x, year));
-    }
-    struct service s = timeline_service(x->f, id, x->w->horizon);
-    if (running != FIGURE_NONE && s.from < s.to)
-        parts[(*n)++] = graph_op2(g, OP_MULTIPLY, figure_at(x->f, running)->node,
-                                  worth_annuity(x, s.from, s.to));
-}
-
-/* Does it cost anything within the horizon? The options' own figures have values already. */
-static bool costs_something(const struct worth *x, const struct alternative *alt)
-{
-    const struct figures *f = x->f;
-    for (size_t i = 0; i < alt->n; i++) {
-        const struct option *o = model_get(f->base, KIND_OPTION, alt->options[i]);
-        const struct compiled *c = compiled_of(&x->b, alt->options[i]);
-        figure_id invest = compiled_figure(f, c, PROPERTY_INVEST, NULL, NULL);
-        figure_id running = compiled_figure(f, c, PROPERTY_RUNNING, NULL, NULL);
-        struct service s = timeline_service(f, alt->options[i], x->w->horizon);
-        if (invest != FIGURE_NONE && year_of_investment(x, o) < x->w->horizon &&
-            figure_value(f, invest) != 0)
-            return true;
-        if (running != FIGURE_NONE && s.from < s.to && figure_value(f, running) != 0)
-            return true;
-    }
-    return false;
-}
-
-static node_id present_cost(struct worth *x, const struct alternative *alt)
-{
-    node_id *parts = NEW_ARRAY(x->f->arena, 2 * alt->n, node_id);
-    size_t n = 0;
-    for (size_t i = 0; i < alt->n; i++)
-        add_cost(x, alt->options[i], parts, &n);
-    return worth_sum(x, n, parts, dim_money);
-}
+#include "decide/cost.h"
 
 /* --- what is avoided --- */
 
@@ -163,7 +101,7 @@ static void add_money(struct worth *x, struct alternative *alt, const struct str
     struct graph *g = x->f->graph;
     const struct alternative *nothing = &x->w->alternatives.at[0];
     struct measure m = measure_of(PROPERTY_RISK, NULL);
-    node_id benefit = measure_avoided(x, &m, s), cost = present_cost(x, alt), damage;
+    node_id benefit = measure_avoided(x, &m, s), cost = cost_present(&x->money, alt), damage;
     if (alt->n == 0)
         damage = measure_now(x, &m);
     else
@@ -178,7 +116,7 @@ static void add_money(struct worth *x, struct alternative *alt, const struct str
     alt->benefit = add(x, PROPERTY_BENEFIT, alt, NULL, benefit);
     alt->net = add(x, PROPERTY_NET, alt, NULL, net);
     alt->avoids = add(x, PROPERTY_AVOIDS, alt, NULL, measure_avoided_yearly(x, &m, alt));
-    if (costs_something(x, alt))
+    if (cost_is_something(&x->money, alt))
         alt->ratio = add(x, PROPERTY_RATIO, alt, NULL, ratio_of_means(&x->b, benefit, cost));
 }
 
@@ -222,11 +160,8 @@ void worth_compile(struct figures *f, struct weighing *w, const struct variant *
                    const struct stretches *stretches)
 {
     struct worth x = {.f = f, .w = w};
-    const struct compiled *settings = figures_settings(f);
-    figure_id discount = compiled_figure(f, settings, PROPERTY_DISCOUNT, NULL, NULL);
     compiled_begin(f, base, model_find(f->base, w->id), w->id, &x.b);
-    x.one_year = compile_const(&x.b, 1, dim_time, "1 a");
-    x.rate = graph_op2(f->graph, OP_MULTIPLY, figure_at(f, discount)->node, x.one_year);
+    money_begin(&x.money, f, &x.b, w->horizon);
     for (size_t i = 0; i < w->alternatives.n; i++)
         add_alternative(&x, &w->alternatives.at[i], &stretches[i]);
     for (size_t i = 0; i < w->alternatives.n; i++)
