@@ -160,6 +160,7 @@ void worth_compile(struct figures *f, struct weighing *w, const struct variant *
                    const struct stretches *stretches)
 {
     struct worth x = {.f = f, .w = w};
+    figures_settings(f); /* a section of its own, to be there before this one is open */
     compiled_begin(f, base, model_find(f->base, w->id), w->id, &x.b);
     money_begin(&x.money, f, &x.b, w->horizon);
     for (size_t i = 0; i < w->alternatives.n; i++)
