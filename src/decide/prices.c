@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* What a customer hour and a life cost under each alternative that avoids any: quotients that
- * exist only where the divisor has a value, so that this section comes behind the other. */
+ * exist only where the divisor has a value, so that this section comes behind the other. A life has
+ * no price where the alternative avoids more damage than it costs. */
 #include "decide/worth.h"
 
 #include "figure/compile.h"
@@ -51,7 +52,8 @@ void prices_compile(struct figures *f, struct weighing *w)
                 &b, PROPERTY_PER_HOUR, x->name, NULL,
                 ratio_of_means(&b, node_of(f, x->present_cost), node_of(f, x->present_time)), NULL,
                 NULL);
-        if (is_above_zero(f, x->present_fatalities))
+        if (is_above_zero(f, x->present_fatalities) &&
+            figure_value(f, x->present_cost) > figure_value(f, x->benefit))
             add_per_fatality(&b, x);
     }
     compiled_end(&b);

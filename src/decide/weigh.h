@@ -53,7 +53,8 @@ struct alternative {
                               nothing too */
     figure_id together; /* of combinations: worth beyond the options one by one; FIGURE_NONE where
                               one of them is not possible alone */
-    figure_id per_hour, per_fatality, disproportion; /* FIGURE_NONE where nothing is avoided */
+    figure_id per_hour, per_fatality, disproportion; /* FIGURE_NONE where nothing is avoided, and
+                                                        the last two where that costs nothing */
     const struct compiled **hazards; /* under `variant`, in the order of weighing.hazards */
     size_t rank;                     /* 1 is best; set by weigh_rank */
 };

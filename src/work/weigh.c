@@ -57,7 +57,7 @@ static void alternative_row(struct job *j, struct block *b, const struct alterna
     money_cell(j, row, x->ratio);
 }
 
-static void alternatives_table(struct job *j, const struct weighing *w)
+void part_alternatives(struct job *j, const struct weighing *w)
 {
     struct report *r = j->report;
     const char *currency = j->model->settings->currency;
@@ -108,7 +108,7 @@ static void option_row(struct job *j, struct block *b, const struct object *o)
     }
 }
 
-static void options_table(struct job *j, const struct weighing *w)
+void part_options(struct job *j, const struct weighing *w)
 {
     struct report *r = j->report;
     struct block *b = report_table(r, "options", "Options");
@@ -152,7 +152,7 @@ static void hazard_row(struct job *j, struct block *b, const struct weighed_haza
         row_text(r, row, h->in_focus ? "yes" : "no");
 }
 
-static void hazards_table(struct job *j, const struct weighing *w)
+void part_weighed_hazards(struct job *j, const struct weighing *w)
 {
     struct report *r = j->report;
     const char *currency = j->model->settings->currency;
@@ -195,14 +195,26 @@ static void left_out_note(struct job *j, const struct weighing *w)
             WEIGH_ALL);
 }
 
+static void sentence(struct job *j, const char *key, const char *text)
+{
+    if (*text)
+        report_note(j->report, key, "%s", text);
+}
+
 void part_weighing(struct job *j, struct weighing *w)
 {
     weigh_rank(j->figures, w);
-    report_note(j->report, "recommendation", "%s", weighing_sentence(j, w));
-    alternatives_table(j, w);
+    sentence(j, "recommendation", weighing_sentence(j, w));
+    sentence(j, "people", people_sentence(j, w));
+    sentence(j, "to-others", perspectives_sentence(j, w));
+    sentence(j, "outside-focus", outside_focus_sentence(j, w));
+    part_alternatives(j, w);
     left_out_note(j, w);
-    options_table(j, w);
-    hazards_table(j, w);
+    part_options(j, w);
+    part_worth_by_perspective(j, w);
+    part_together(j, w);
+    part_customers_and_people(j, w);
+    part_weighed_hazards(j, w);
 }
 
 /* --- the grid --- */
@@ -271,6 +283,16 @@ void part_weighing_grid(struct job *j, struct weighing *w)
     unmoved_note(j, unmoved);
 }
 
+void part_conventions(struct job *j)
+{
+    report_note(
+        j->report, "conventions",
+        "Present values at %s; investments at the start of their year, damage and running cost in "
+        "the middle of each year; damage counted: %s.",
+        node_says(j->arena, node_get(model_find(j->model, REGISTER_ID)->node, "discount"), 40),
+        perspective_words(j));
+}
+
 /* --- the use case --- */
 
 static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
@@ -286,12 +308,7 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
     report_heading(j->report, 1, arena_printf(j->arena, "%s: %s", w->id, w->decision->question));
     part_weighing(j, w);
     part_weighing_grid(j, w);
-    report_note(
-        j->report, "conventions",
-        "Present values at %s; investments at the start of their year, damage and running cost in "
-        "the middle of each year; damage counted: %s.",
-        node_says(j->arena, node_get(model_find(j->model, REGISTER_ID)->node, "discount"), 40),
-        perspective_words(j));
+    part_conventions(j);
     part_unused(j);
     part_cautions(j);
     return OHMEN_OK;

@@ -41,7 +41,7 @@ struct job {
     struct store *store;
     uint64_t at; /* entry that is looked at */
     ohmen_query query;
-    day date; /* of evaluation */
+    day date;                     /* of evaluation */
     struct store_objects objects; /* as of `at` */
     struct model *model;
     struct figures *figures;
@@ -111,7 +111,38 @@ void part_unused(struct job *j);
 void part_linearity(struct job *j, const struct hazards *h);
 void part_cautions(struct job *j);
 
+#define HOURS_PER_YEAR 8760.
+
+/* All of a weighing that `weigh` and the report print, without the grid; and its parts. They rank
+ * it where that has not been done (weigh_rank) only in part_weighing and part_weighing_grid. */
 void part_weighing(struct job *j, struct weighing *w);
+void part_alternatives(struct job *j, const struct weighing *w);
+void part_options(struct job *j, const struct weighing *w);
+void part_weighed_hazards(struct job *j, const struct weighing *w);
+/* How present values are taken, in a sentence. */
+void part_conventions(struct job *j);
+/* Net present value and rank by perspective; nothing where there are not two. */
+void part_worth_by_perspective(struct job *j, const struct weighing *w);
+/* What combinations are worth beyond the sum of their options. */
+void part_together(struct job *j, const struct weighing *w);
+/* Customer hours, deaths, the risk of a person; nothing where no alternative changes any. */
+void part_customers_and_people(struct job *j, const struct weighing *w);
+/* Outcomes that hold much of the risk: how often now, and with the best alternative. */
+void part_endings(struct job *j, const struct weighing *w);
+/* What is best to perspectives for which the best alternative is not; "" where it is for all. */
+const char *perspectives_sentence(struct job *j, const struct weighing *w);
+/* Hazards outside the focus that the best alternative changes; "" where there are none. */
+const char *outside_focus_sentence(struct job *j, const struct weighing *w);
+/* Whether the best alternative leaves people with a risk above what is tolerable; "" else. */
+const char *people_sentence(struct job *j, const struct weighing *w);
+/* The greatest risk of a person of the weighed groups under an alternative; *group: whose. There
+ * is at least one group. */
+double worst_individual_risk(const struct job *j, const struct weighing *w,
+                             const struct alternative *x, size_t *group);
+/* Its place among the criteria for people: "acceptable", "tolerable", "intolerable", or "". */
+const char *people_word(struct job *j, double risk);
+/* A number in a sentence: three significant digits. */
+const char *plain_text(struct job *j, double x);
 void part_weighing_grid(struct job *j, struct weighing *w);
 /* One sentence: what is best, and what it is worth. */
 const char *weighing_sentence(struct job *j, const struct weighing *w);

@@ -1,0 +1,400 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What alternatives are worth beside their net present value: to each perspective, to customers
+ * and to people, and options together and apart. Tables and sentences; owns nothing. */
+#include <math.h>
+#include <stdlib.h>
+
+#include "work/work.h"
+
+static void figure_cell(struct job *j, struct row *row, figure_id id)
+{
+    if (id == FIGURE_NONE)
+        row_empty(j->report, row);
+    else
+        row_number(j->report, row, figure_value(j->figures, id),
+                   figure_name(j->figures, j->arena, id));
+}
+
+static double value_of(const struct job *j, figure_id id)
+{
+    return id == FIGURE_NONE ? 0 : figure_value(j->figures, id);
+}
+
+static const char *alternative_words(const struct alternative *x)
+{
+    return x->n == 0 ? "do nothing" : x->name;
+}
+
+/* --- perspectives --- */
+
+static double net_to(const struct job *j, const struct alternative *x, size_t perspective)
+{
+    return x->n == 0 ? 0 : figure_value(j->figures, x->of[perspective].net);
+}
+
+static size_t rank_to(const struct job *j, const struct weighing *w, size_t alternative,
+                      size_t perspective)
+{
+    double net = net_to(j, &w->alternatives.at[alternative], perspective);
+    size_t rank = 1;
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        rank += net_to(j, &w->alternatives.at[i], perspective) > net;
+    return rank;
+}
+
+static void perspective_row(struct job *j, struct block *b, const struct weighing *w, size_t index)
+{
+    const struct alternative *x = &w->alternatives.at[index];
+    size_t n = j->model->settings->perspectives.n;
+    struct row *row = block_row(j->report, b);
+    row_text(j->report, row, alternative_words(x));
+    for (size_t p = 0; p < n; p++) {
+        figure_cell(j, row, x->n ? x->of[p].net : FIGURE_NONE);
+        row_count(j->report, row, rank_to(j, w, index, p));
+    }
+}
+
+void part_worth_by_perspective(struct job *j, const struct weighing *w)
+{
+    const struct rows *rows = &j->model->settings->perspectives;
+    struct report *r = j->report;
+    if (rows->n < 2)
+        return;
+    struct block *b = report_table(r, "worth-by-perspective",
+                                   "Net present value to each perspective, and its rank there");
+    block_column(r, b, "alternative", "Alternative", "", STYLE_PLAIN);
+    for (size_t p = 0; p < rows->n; p++) {
+        const char *who = rows->keys[p];
+        block_column(r, b, arena_printf(j->arena, "net-%s", who), who, j->model->settings->currency,
+                     STYLE_MONEY);
+        block_column(r, b, arena_printf(j->arena, "rank-%s", who), "Rank", "", STYLE_PLAIN)->keep =
+            1;
+    }
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        perspective_row(j, b, w, w->order[i]);
+}
+
+/* The alternative that is best to a perspective: of equal ones that with fewer options. */
+static const struct alternative *best_to(const struct job *j, const struct weighing *w,
+                                         size_t perspective)
+{
+    const struct alternative *best = &w->alternatives.at[0];
+    for (size_t i = 1; i < w->alternatives.n; i++)
+        if (net_to(j, &w->alternatives.at[i], perspective) > net_to(j, best, perspective))
+            best = &w->alternatives.at[i];
+    return best;
+}
+
+const char *perspectives_sentence(struct job *j, const struct weighing *w)
+{
+    const struct alternative *best = &w->alternatives.at[w->order[0]];
+    const struct rows *rows = &j->model->settings->perspectives;
+    const char *currency = j->model->settings->currency;
+    struct text t;
+    text_init(&t, j->arena);
+    for (size_t p = 0; p < rows->n; p++) {
+        const struct alternative *x = best_to(j, w, p);
+        if (x == best ||
+            (j->figures->perspective && text_equal(rows->keys[p], j->figures->perspective)))
+            continue;
+        text_printf(&t, "%sTo %s the best is %s", t.n ? " " : "", rows->keys[p],
+                    x->n ? "" : "to do nothing");
+        if (x->n)
+            text_printf(&t, "%s, worth %s", x->name,
+                        money_text(j->arena, net_to(j, x, p), currency));
+        if (best->n)
+            text_printf(&t, "; %s is worth %s to it", best->name,
+                        money_text(j->arena, net_to(j, best, p), currency));
+        text_add(&t, ".");
+    }
+    return text_str(&t);
+}
+
+/* --- together and apart --- */
+
+static void together_row(struct job *j, struct block *b, const struct alternative *x)
+{
+    struct row *row = block_row(j->report, b);
+    double together = value_of(j, x->together);
+    row_text(j->report, row, x->name);
+    figure_cell(j, row, x->net);
+    figure_cell(j, row, x->together);
+    row_text(j->report, row, together > 0 ? "more" : together < 0 ? "less" : "the same");
+}
+
+/* Combinations of two, since larger ones are made of them, and the best alternative. */
+void part_together(struct job *j, const struct weighing *w)
+{
+    struct report *r = j->report;
+    struct block *b = NULL;
+    for (size_t i = 0; i < w->alternatives.n; i++) {
+        const struct alternative *x = &w->alternatives.at[w->order[i]];
+        if (x->together == FIGURE_NONE || (x->n > 2 && x->rank > 1))
+            continue;
+        if (!b) {
+            b = report_table(r, "together", "Options together and apart");
+            block_column(r, b, "alternative", "Together", "", STYLE_PLAIN);
+            block_column(r, b, "net", "Net present value", j->model->settings->currency,
+                         STYLE_MONEY);
+            block_column(r, b, "beyond", "Beyond their sum", j->model->settings->currency,
+                         STYLE_MONEY);
+            block_column(r, b, "worth", "Worth", "", STYLE_PLAIN)->keep = 1;
+        }
+        together_row(j, b, x);
+    }
+}
+
+/* --- supply and people --- */
+
+static bool any_customer(const struct job *j, const struct weighing *w)
+{
+    for (size_t i = 1; i < w->alternatives.n; i++)
+        if (value_of(j, w->alternatives.at[i].avoids_time) != 0)
+            return true;
+    return false;
+}
+
+double worst_individual_risk(const struct job *j, const struct weighing *w,
+                             const struct alternative *x, size_t *group)
+{
+    double worst = 0;
+    *group = 0;
+    for (size_t i = 0; i < w->groups.n; i++)
+        if (figure_value(j->figures, x->individual[i]) > worst) {
+            worst = figure_value(j->figures, x->individual[i]);
+            *group = i;
+        }
+    return worst;
+}
+
+static bool has_people_criteria(const struct job *j)
+{
+    const struct criteria *c = j->model->settings->criteria;
+    return c && c->people;
+}
+
+static void people_cells(struct job *j, struct row *row, const struct weighing *w,
+                         const struct alternative *x)
+{
+    struct report *r = j->report;
+    size_t group;
+    double worst = worst_individual_risk(j, w, x, &group);
+    figure_cell(j, row, x->avoids_fatalities);
+    figure_cell(j, row, x->per_fatality);
+    if (has_people_criteria(j))
+        figure_cell(j, row, x->disproportion);
+    row_number(r, row, worst, figure_name(j->figures, j->arena, x->individual[group]));
+    row_text(r, row, w->groups.at[group].id);
+    if (has_people_criteria(j))
+        row_text(r, row, people_word(j, worst));
+}
+
+static void supply_row(struct job *j, struct block *b, const struct weighing *w,
+                       const struct alternative *x, bool customers)
+{
+    struct row *row = block_row(j->report, b);
+    row_text(j->report, row, alternative_words(x));
+    if (customers && x->n) {
+        row_number(j->report, row, figure_value(j->figures, x->avoids_time) * HOURS_PER_YEAR,
+                   figure_name(j->figures, j->arena, x->avoids_time));
+        if (x->per_hour == FIGURE_NONE)
+            row_empty(j->report, row);
+        else
+            row_number(j->report, row, figure_value(j->figures, x->per_hour) / HOURS_PER_YEAR,
+                       figure_name(j->figures, j->arena, x->per_hour));
+    } else if (customers) {
+        row_empty(j->report, row);
+        row_empty(j->report, row);
+    }
+    if (w->groups.n)
+        people_cells(j, row, w, x);
+}
+
+static void people_columns(struct job *j, struct block *b)
+{
+    struct report *r = j->report;
+    const char *currency = j->model->settings->currency;
+    block_column(r, b, "avoids-fatalities", "Deaths avoided", "1/a", STYLE_PLAIN)->keep = 2;
+    block_column(r, b, "net-cost-per-fatality", "Net cost per death avoided", currency, STYLE_MONEY)
+        ->keep = 2;
+    if (has_people_criteria(j))
+        block_column(r, b, "disproportion", "Disproportion", "", STYLE_RATIO)->keep = 1;
+    block_column(r, b, "individual-risk", "Risk of a person", "1/a", STYLE_FREQUENCY)->keep = 4;
+    block_column(r, b, "group", "Of", "", STYLE_PLAIN)->keep = 3;
+    if (has_people_criteria(j))
+        block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 5;
+}
+
+void part_customers_and_people(struct job *j, const struct weighing *w)
+{
+    struct report *r = j->report;
+    bool customers = any_customer(j, w);
+    if (!customers && w->groups.n == 0)
+        return;
+    struct block *b = report_table(r, "customers-and-people",
+                                   "What the alternatives do for customers and people");
+    block_column(r, b, "alternative", "Alternative", "", STYLE_PLAIN);
+    if (customers) {
+        block_column(r, b, "avoids-customer-time", "Without supply, avoided", "customer h/a",
+                     STYLE_PLAIN)
+            ->keep = 4;
+        block_column(r, b, "cost-per-customer-hour", "Cost of an hour",
+                     arena_printf(j->arena, "%s/h", j->model->settings->currency), STYLE_MONEY)
+            ->keep = 3;
+    }
+    if (w->groups.n)
+        people_columns(j, b);
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        supply_row(j, b, w, &w->alternatives.at[w->order[i]], customers);
+    if (w->groups.n)
+        report_note(
+            r, "individual-risk",
+            "Risk of a person: of death, per year, over all hazards of the register, of the "
+            "group that bears most, once the options are in service. Deaths avoided, and "
+            "the money that they cost beyond what is avoided in damage, stand beside the "
+            "money and are not part of it.");
+}
+
+const char *people_word(struct job *j, double risk)
+{
+    const struct criteria *c = j->model->settings->criteria;
+    const struct people_criteria *p = c ? c->people : NULL;
+    if (!p)
+        return "";
+    if (p->intolerable_above && risk > expr_constant(p->intolerable_above->expr))
+        return "intolerable";
+    if (p->acceptable_below && risk < expr_constant(p->acceptable_below->expr))
+        return "acceptable";
+    return "tolerable";
+}
+
+const char *plain_text(struct job *j, double x)
+{
+    char number[32];
+    return arena_str(j->arena, number_text(number, x, STYLE_PLAIN));
+}
+
+const char *people_sentence(struct job *j, const struct weighing *w)
+{
+    const struct alternative *best = &w->alternatives.at[w->order[0]];
+    size_t group;
+    if (w->groups.n == 0)
+        return "";
+    double worst = worst_individual_risk(j, w, best, &group);
+    if (!text_equal(people_word(j, worst), "intolerable"))
+        return "";
+    return arena_printf(j->arena,
+                        "INTOLERABLE for people: with %s a person of %s bears a risk of death of "
+                        "%s per year, above the limit of the register. Money alone must not "
+                        "decide.",
+                        best->n ? best->name : "doing nothing", w->groups.at[group].id,
+                        plain_text(j, worst));
+}
+
+/* --- the focus --- */
+
+const char *outside_focus_sentence(struct job *j, const struct weighing *w)
+{
+    const struct alternative *best = &w->alternatives.at[w->order[0]];
+    struct text t;
+    text_init(&t, j->arena);
+    for (size_t i = 0; w->decision->focus.n && i < w->hazards.n; i++) {
+        const struct compiled *now = w->hazards.at[i].now, *then = best->hazards[i];
+        if (w->hazards.at[i].in_focus || now == then)
+            continue;
+        double change = (then ? figure_value(j->figures, then->main) : 0) -
+                        (now ? figure_value(j->figures, now->main) : 0);
+        text_printf(&t, "%s%s (%s%s)", t.n ? ", " : "", w->hazards.at[i].id, change > 0 ? "+" : "",
+                    money_text(j->arena, change, unit_per_year(j)));
+    }
+    if (t.n == 0)
+        return "";
+    return arena_printf(j->arena, "%s also changes the risk of hazards outside the focus: %s.",
+                        best->name, text_str(&t));
+}
+
+/* --- how it ends --- */
+
+/* Outcomes with at least this share of a hazard's risk, before or after, are bad ends. */
+static const double SHARE_OF_RISK = 0.1;
+
+struct ending {
+    const struct compiled *hazard; /* NULL: there is none */
+    size_t outcome;                /* SIZE_MAX: it has none of that name */
+};
+
+static struct ending ending_of(const struct compiled *hazard, const char *outcome)
+{
+    struct ending x = {hazard, SIZE_MAX};
+    const struct hazard *h = hazard ? hazard->object->data : NULL;
+    for (size_t k = 0; h && k < h->outcomes.n; k++)
+        if (text_equal(h->outcomes.keys[k], outcome))
+            x.outcome = k;
+    return x;
+}
+
+static bool is_bad(const struct job *j, const struct ending *x)
+{
+    if (!x->hazard || x->outcome == SIZE_MAX)
+        return false;
+    const struct hazard_exports *h = x->hazard->exports;
+    double all = figure_value(j->figures, h->risk);
+    return all > 0 && figure_value(j->figures, h->risk_of[x->outcome]) >= SHARE_OF_RISK * all;
+}
+
+static void ending_frequency(struct job *j, struct row *row, const struct ending *x)
+{
+    const struct hazard_exports *h = x->hazard ? x->hazard->exports : NULL;
+    figure_cell(j, row, h && x->outcome != SIZE_MAX ? h->frequency_of[x->outcome] : FIGURE_NONE);
+}
+
+static void ending_row(struct job *j, struct block *b, const char *id, const struct ending *now,
+                       const struct ending *then, bool both)
+{
+    struct row *row = block_row(j->report, b);
+    const struct ending *shown = now->outcome != SIZE_MAX && now->hazard ? now : then;
+    const struct hazard *h = shown->hazard->object->data;
+    const struct hazard_exports *x = shown->hazard->exports;
+    row_text(j->report, row, id);
+    row_text(j->report, row, ROW(struct outcome, h->outcomes, shown->outcome)->name);
+    ending_frequency(j, row, now);
+    if (both)
+        ending_frequency(j, row, then);
+    figure_cell(j, row, x->damage_of[shown->outcome]);
+}
+
+/* Outcomes of one hazard: those that it has now, then those that only the alternative has. */
+static void ending_rows(struct job *j, struct block *b, const char *id, const struct compiled *now,
+                        const struct compiled *then, bool both)
+{
+    const struct compiled *of[] = {now, then};
+    for (size_t side = 0; side < (both ? 2 : 1); side++) {
+        const struct hazard *h = of[side] ? of[side]->object->data : NULL;
+        for (size_t k = 0; h && k < h->outcomes.n; k++) {
+            struct ending p = ending_of(now, h->outcomes.keys[k]);
+            struct ending q = ending_of(then, h->outcomes.keys[k]);
+            bool seen = side == 1 && p.hazard && p.outcome != SIZE_MAX;
+            if (!seen && (is_bad(j, &p) || (both && is_bad(j, &q))))
+                ending_row(j, b, id, &p, &q, both);
+        }
+    }
+}
+
+void part_endings(struct job *j, const struct weighing *w)
+{
+    const struct alternative *best = &w->alternatives.at[w->order[0]];
+    struct report *r = j->report;
+    struct block *b = report_table(r, "endings", "How often it ends badly");
+    block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
+    block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
+    block_column(r, b, "today", "Today", "1/a", STYLE_FREQUENCY);
+    if (best->n)
+        block_column(r, b, "recommended", arena_printf(j->arena, "With %s", best->name), "1/a",
+                     STYLE_FREQUENCY);
+    block_column(r, b, "damage", "Damage", j->model->settings->currency, STYLE_MONEY)->keep = 1;
+    for (size_t i = 0; i < w->hazards.n; i++)
+        ending_rows(j, b, w->hazards.at[i].id, w->hazards.at[i].now, best->hazards[i], best->n > 0);
+    report_note(r, "endings-shown",
+                "Outcomes that hold at least %.0f %% of the risk of their hazard%s.",
+                100 * SHARE_OF_RISK, best->n ? ", now or with what is recommended" : "");
+}
