@@ -25,9 +25,17 @@ const double *eval_gather(struct eval *v, node_id n)
     return x;
 }
 
+static bool is_replaced(const struct eval *v, node_id n)
+{
+    for (size_t i = 0; i < v->n_replaced; i++)
+        if (v->replaced[i] == n)
+            return true;
+    return false;
+}
+
 double eval_complement(const struct eval *v, node_id n)
 {
-    if (graph_at(v->g, n)->op == OP_COMPLEMENT)
+    if (graph_at(v->g, n)->op == OP_COMPLEMENT && !is_replaced(v, n))
         return v->value.at[graph_args(v->g, n)[0]];
     return 1 - v->value.at[n];
 }

@@ -31,6 +31,8 @@ struct eval {
     ARRAY(const struct course *) courses; /* scratch: of a diagram over windows */
     ARRAY(struct course_values) course_values;
     ARRAY(struct course_values) course_back; /* scratch: derivatives of them */
+    size_t n_replaced;       /* of a prober (probe.h), else 0: nodes whose value is not */
+    const node_id *replaced; /* what their operation makes of their arguments */
 };
 
 /* The arguments of node n as numbers, in v->args. */

@@ -119,6 +119,11 @@ extern const struct property_info {
 typedef uint32_t figure_id;
 #define FIGURE_NONE UINT32_MAX
 
+/* Is it a probability or a share: between 0 and 1? And may a figure of the property have this
+ * value: a probability, or what cannot be negative? Others may have any. */
+bool property_is_probability(enum property p);
+bool property_allows(enum property p, double x);
+
 /* How something fails: at all times alike, or over time. */
 struct behaviour {
     node_id node;       /* argument of diagrams: a number, or a COURSE */

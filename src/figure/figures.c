@@ -263,7 +263,7 @@ static ohmen_status not_finite(struct figures *f, node_id culprit, ohmen_error *
         name);
 }
 
-static bool is_probability(enum property p)
+bool property_is_probability(enum property p)
 {
     return p == PROPERTY_FAILS || p == PROPERTY_SHARE || p == PROPERTY_ON_DEMAND ||
            p == PROPERTY_IN_REPAIR || p == PROPERTY_IN_TEST || p == PROPERTY_OUT ||
@@ -283,20 +283,28 @@ static bool must_not_be_negative(enum property p)
 /* What is certain may come out as more than 1 by the rounding of an average over time. */
 static const double MOST_PROBABLE = 1 + 1e-11;
 
+bool property_allows(enum property p, double x)
+{
+    if (property_is_probability(p))
+        return x >= 0 && x <= MOST_PROBABLE;
+    return x >= 0 || !must_not_be_negative(p);
+}
+
 /* What an expression of names gives can only be seen here. */
 static ohmen_status check_ranges(struct figures *f, ohmen_error *e)
 {
     for (figure_id i = 0; i < f->list.n; i++) {
         enum property p = f->list.at[i].property;
-        if (!is_probability(p) && !must_not_be_negative(p))
+        if (!property_is_probability(p) && !must_not_be_negative(p))
             continue;
         double x = figure_value(f, i);
         char text[32];
-        if (is_probability(p) && (x < 0 || x > MOST_PROBABLE))
+        if (property_allows(p, x))
+            continue;
+        if (property_is_probability(p))
             return error_set(e, OHMEN_COMPUTE, "%s is %s, which is no probability",
                              figure_name(f, f->arena, i), text_double(text, x));
-        if (must_not_be_negative(p) && x < 0)
-            return error_set(e, OHMEN_COMPUTE, "%s is negative", figure_name(f, f->arena, i));
+        return error_set(e, OHMEN_COMPUTE, "%s is negative", figure_name(f, f->arena, i));
     }
     return OHMEN_OK;
 }

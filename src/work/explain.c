@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The derivation of a figure: formula by formula, down to inputs with their source. */
+/* The derivation of a figure: formula by formula, down to inputs with their source. And of a value
+ * at which a decision turns, which is no figure of the graph but made of some. */
 #include "decide/interval.h"
 #include "work/work.h"
 
@@ -18,24 +19,25 @@ static bool is_known(const struct explaining *x, figure_id id)
     return false;
 }
 
+static void add(struct explaining *x, figure_id id, unsigned level)
+{
+    *array_push(x->job->arena, &x->todo) = id;
+    *array_push(x->job->arena, &x->levels) = level;
+}
+
 /* Breadth first, each figure once, at its least level. */
-static void collect(struct explaining *x, figure_id root)
+static void collect(struct explaining *x)
 {
     struct job *j = x->job;
-    *array_push(j->arena, &x->todo) = root;
-    *array_push(j->arena, &x->levels) = 1;
     for (size_t i = 0; i < x->todo.n; i++) {
         struct figure_ids inputs = {0};
         if (x->depth && x->levels.at[i] >= x->depth)
             continue;
         unsigned level = x->levels.at[i] + 1;
         figure_inputs(j->figures, j->arena, x->todo.at[i], &inputs);
-        for (size_t k = 0; k < inputs.n; k++) {
-            if (is_known(x, inputs.at[k]))
-                continue;
-            *array_push(j->arena, &x->todo) = inputs.at[k];
-            *array_push(j->arena, &x->levels) = level;
-        }
+        for (size_t k = 0; k < inputs.n; k++)
+            if (!is_known(x, inputs.at[k]))
+                add(x, inputs.at[k], level);
     }
 }
 
@@ -50,22 +52,9 @@ static const char *source_words(struct job *j, figure_id id)
                         s->reference ? s->reference : "");
 }
 
-/* A value in the unit in which the figure is shown. */
-static const char *value_words(struct job *j, figure_id id, double value)
-{
-    char number[32];
-    double shown, whole = figure_value(j->figures, id);
-    const char *unit = figure_display(j, id, &shown);
-    shown = whole == 0 ? value : value * (shown / whole);
-    if (text_starts(unit, j->model->settings->currency))
-        return money_text(j->arena, shown, unit);
-    number_text(number, shown, STYLE_PLAIN);
-    return arena_printf(j->arena, "%s%s%s", number, *unit ? " " : "", unit);
-}
-
 static const char *shown_value(struct job *j, figure_id id)
 {
-    return value_words(j, id, figure_value(j->figures, id));
+    return figure_words(j, id, figure_value(j->figures, id));
 }
 
 static void explain_row(struct job *j, struct block *b, figure_id id, unsigned level)
@@ -82,7 +71,22 @@ static void explain_row(struct job *j, struct block *b, figure_id id, unsigned l
     row_text(r, row, dim_unit(j->arena, &j->model->units, figure_dim(j->figures, id)));
 }
 
-static void explain_table(struct explaining *x)
+/* A value at which a decision turns is no figure of the graph. */
+static void turn_row(struct job *j, struct block *b, const struct turn *t)
+{
+    struct report *r = j->report;
+    struct row *row = block_row(r, b);
+    char exact[32];
+    row_count(r, row, 1);
+    row_text(r, row, t->name);
+    row_text(r, row, figure_words(j, t->input, t->at));
+    row_text(r, row, turn_formula(j, t));
+    row_text(r, row, "");
+    row_text(r, row, text_double(exact, t->at));
+    row_text(r, row, dim_unit(j->arena, &j->model->units, figure_dim(j->figures, t->input)));
+}
+
+static void explain_table(struct explaining *x, const struct turn *turn)
 {
     struct report *r = x->job->report;
     struct block *b = report_table(r, "derivation", "Derivation");
@@ -94,6 +98,8 @@ static void explain_table(struct explaining *x)
     block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 4;
     block_column(r, b, "exact", "Exact", "", STYLE_PLAIN)->keep = 2;
     block_column(r, b, "unit", "Unit", "", STYLE_PLAIN)->keep = 2;
+    if (turn)
+        turn_row(x->job, b, turn);
     for (size_t i = 0; i < x->todo.n; i++)
         explain_row(x->job, b, x->todo.at[i], x->levels.at[i]);
 }
@@ -113,7 +119,7 @@ static void method_note(struct job *j, figure_id id)
     enum mean_method method = figure_method(j->figures, id);
     if (method == MEAN_EXACT)
         return;
-    const char *at_means = value_words(j, id, figure_at_means(j->figures, id));
+    const char *at_means = figure_words(j, id, figure_at_means(j->figures, id));
     if (method == MEAN_QUADRATURE)
         report_note(j->report, "mean",
                     "The mean over what is unknown, by quadrature. At the means of what is unknown "
@@ -124,7 +130,7 @@ static void method_note(struct job *j, figure_id id)
                     "The mean over what is unknown, by a sample of %d points: its standard error "
                     "is %s. At the means of what is unknown it would be %s: something unknown "
                     "enters more than once, or in a curve.",
-                    MEAN_SETS * MEAN_STRATA, value_words(j, id, figure_error(j->figures, id)),
+                    MEAN_SETS * MEAN_STRATA, figure_words(j, id, figure_error(j->figures, id)),
                     at_means);
 }
 
@@ -133,11 +139,32 @@ struct explain_request {
     unsigned depth;
 };
 
+/* A value at which a decision turns, and the figures that it is made of. */
+static ohmen_status explain_turn(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct explaining x = {.job = j, .depth = q->depth};
+    struct figure_ids inputs = {0};
+    struct turn turn;
+    ohmen_status status = turn_find(j->figures, q->figure, &turn, e);
+    if (status != OHMEN_OK)
+        return status;
+    part_turn_head(j, &turn);
+    turn_inputs_of_formula(j, &turn, &inputs);
+    for (size_t i = 0; i < inputs.n && q->depth != 1; i++)
+        add(&x, inputs.at[i], 2);
+    collect(&x);
+    explain_table(&x, &turn);
+    part_turn_method(j, &turn);
+    return OHMEN_OK;
+}
+
 static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
 {
     const struct explain_request *q = ctx;
     figure_id id = FIGURE_NONE;
     ohmen_status status = job_load_figures(j, e);
+    if (status == OHMEN_OK && turn_is_named(q->figure))
+        return explain_turn(j, q, e);
     bool over_cycles = interval_is_named(q->figure);
     if (status == OHMEN_OK && over_cycles)
         status = interval_find(j->figures, q->figure, &j->figures, &id, e);
@@ -154,8 +181,9 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
             j->report, "whole-cycles",
             "All figures here are averages over whole cycles of tests, whatever their variant, "
             "as `ohmen test-interval` takes them.");
-    collect(&x, id);
-    explain_table(&x);
+    add(&x, id, 1);
+    collect(&x);
+    explain_table(&x, NULL);
     method_note(j, id);
     return OHMEN_OK;
 }

@@ -99,6 +99,18 @@ const char *figure_display(struct job *j, figure_id id, double *shown)
     return s.unit;
 }
 
+const char *figure_words(struct job *j, figure_id id, double value)
+{
+    char number[32];
+    double shown, whole = figure_value(j->figures, id);
+    const char *unit = figure_display(j, id, &shown);
+    shown = whole == 0 ? value : value * (shown / whole);
+    if (text_starts(unit, j->model->settings->currency))
+        return money_text(j->arena, shown, unit);
+    number_text(number, shown, STYLE_PLAIN);
+    return arena_printf(j->arena, "%s%s%s", number, *unit ? " " : "", unit);
+}
+
 const char *figure_source(struct job *j, figure_id id)
 {
     const struct figure *g = figure_at(j->figures, id);

@@ -7,7 +7,7 @@
 #ifndef WORK_WORK_H
 #define WORK_WORK_H
 
-#include "decide/weigh.h"
+#include "decide/turn.h"
 #include "ohmen/ohmen.h"
 #include "report/block.h"
 #include "store/store.h"
@@ -47,6 +47,7 @@ struct job {
     struct figures *figures;
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
+    struct strmap turns; /* decision -> struct turns, once they were asked for (turn.c) */
     struct ohmen_report *out;
     struct report *report; /* &out->report */
     bool keep_report;      /* the report goes out although the job fails */
@@ -147,6 +148,19 @@ void part_weighing_grid(struct job *j, struct weighing *w);
 /* One sentence: what is best, and what it is worth. */
 const char *weighing_sentence(struct job *j, const struct weighing *w);
 
+/* What would turn the decision, a stated quantity at a time: a table of the nearest, and how many
+ * more there are. The weighing is ranked. */
+void part_turn(struct job *j, struct weighing *w);
+/* One sentence: the nearest of these. */
+const char *turn_sentence(struct job *j, const struct weighing *w);
+
+/* The derivation of one of them: what it is, and how it was found; its formula, and the figures
+ * that this names. */
+void part_turn_head(struct job *j, const struct turn *t);
+void part_turn_method(struct job *j, const struct turn *t);
+const char *turn_formula(struct job *j, const struct turn *t);
+void turn_inputs_of_formula(struct job *j, const struct turn *t, struct figure_ids *out);
+
 /* Criteria lines of the register for a grid; only those whose scope is a hazard. */
 void part_criteria_lines(struct job *j, struct block *grid);
 
@@ -160,6 +174,9 @@ const char *display_unit(struct job *j, struct dim d, double value, double *show
 
 /* The same for a figure: a stated quantity is shown in the unit that its author used. */
 const char *figure_display(struct job *j, figure_id id, double *shown);
+
+/* A value of a figure, which need not be its own, in words with that unit. */
+const char *figure_words(struct job *j, figure_id id, double value);
 
 /* Where a figure comes from: its source, that of the figure that it merely repeats, "none" for
  * a leaf without one, "" for a formula. */
