@@ -7,6 +7,7 @@
 #ifndef WORK_WORK_H
 #define WORK_WORK_H
 
+#include "decide/lean.h"
 #include "decide/turn.h"
 #include "ohmen/ohmen.h"
 #include "report/block.h"
@@ -27,6 +28,14 @@ struct ohmen_report {
     ARRAY(const char *) diagnostics;
     const char *text; /* of an export */
     jmp_buf guard;    /* of the writers */
+};
+
+/* What is worked out from figures and is none of the graph, for explaining. */
+struct consumed {
+    const char *name, *words, *formula;
+    double value; /* in base units of dim */
+    struct dim dim;
+    struct figure_ids inputs; /* that the formula names */
 };
 
 /* What cannot be evaluated, and why. */
@@ -158,8 +167,16 @@ const char *turn_sentence(struct job *j, const struct weighing *w);
  * that this names. */
 void part_turn_head(struct job *j, const struct turn *t);
 void part_turn_method(struct job *j, const struct turn *t);
-const char *turn_formula(struct job *j, const struct turn *t);
-void turn_inputs_of_formula(struct job *j, const struct turn *t, struct figure_ids *out);
+struct consumed turn_consumed(struct job *j, const struct turn *t);
+
+/* What a decision rests on: inputs by how much they move it, and their sources. It is ranked. */
+void part_rests_on(struct job *j, const struct weighing *w);
+/* The derivation of one such movement. */
+void part_lean_head(struct job *j, const struct lean *x);
+struct consumed lean_consumed(struct job *j, const struct lean *x);
+
+/* What the figure belongs to, by its name; the register's own settings by what they are. */
+const char *figure_subject(const struct job *j, figure_id id);
 
 /* Criteria lines of the register for a grid; only those whose scope is a hazard. */
 void part_criteria_lines(struct job *j, struct block *grid);
