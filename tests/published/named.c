@@ -10,7 +10,6 @@
 
 #include "base/file.h"
 #include "doc/yaml.h"
-#include "loaded.h"
 
 static const struct sized {
     const char *name;
@@ -47,15 +46,25 @@ static const char *text_of(struct arena *a, const char *folder, const char *name
     return arena_strn(a, text, n);
 }
 
-static void load_named(struct loaded *l, struct arena *a, const char *folder, char *files)
+void named_load(struct loaded *l, struct arena *a, const char *folder, size_t n,
+                const char *const *files, const char *perspective)
 {
-    ARRAY(const char *) texts = {0};
-    char *perspective = strchr(files, '@');
+    const char **texts = NEW_ARRAY(a, n, const char *);
+    for (size_t i = 0; i < n; i++)
+        texts[i] = text_of(a, folder, files[i]);
+    loaded_texts(l, a, n, texts, perspective);
+}
+
+/* FILE[+FILE...][@PERSPECTIVE] */
+static void load_written(struct loaded *l, struct arena *a, const char *folder, char *written)
+{
+    ARRAY(const char *) files = {0};
+    char *perspective = strchr(written, '@');
     if (perspective)
         *perspective++ = 0;
-    for (char *name = strtok(files, "+"); name; name = strtok(NULL, "+"))
-        *array_push(a, &texts) = text_of(a, folder, name);
-    loaded_texts(l, a, texts.n, texts.at, perspective);
+    for (char *name = strtok(written, "+"); name; name = strtok(NULL, "+"))
+        *array_push(a, &files) = name;
+    named_load(l, a, folder, files.n, files.at, perspective);
 }
 
 double named_figure(const char *folder, char *inputs)
@@ -64,7 +73,7 @@ double named_figure(const char *folder, char *inputs)
     struct loaded l;
     char *files = strtok(inputs, " "), *name = strtok(NULL, " "), *unit = strtok(NULL, " ");
     ck_assert_msg(files && name && unit && !strtok(NULL, " "), "files, a figure and its unit");
-    load_named(&l, a, folder, files);
+    load_written(&l, a, folder, files);
     double value = loaded_value(&l, name) / unit_size(unit);
     arena_free(a);
     return value;
