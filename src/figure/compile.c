@@ -101,8 +101,9 @@ node_id compile_quantity(struct building *b, const struct quantity *q)
     if (q->shape == SHAPE_EXPRESSION)
         return compile_stated(b, q->expr);
     *array_push(f->arena, &f->inputs) = q;
-    *array_push(f->arena, &f->input_names) =
-        arena_printf(f->arena, "%s#%u", b->unit->id, b->unit->n_inputs++);
+    const char *part = b->unit->part;
+    *array_push(f->arena, &f->input_names) = arena_printf(
+        f->arena, "%s%s%s#%u", b->unit->id, part ? "/" : "", part ? part : "", b->unit->n_inputs++);
     return graph_input(f->graph, (uint32_t)(f->inputs.n - 1), quantity_mean(q), q->dim);
 }
 

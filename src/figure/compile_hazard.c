@@ -298,14 +298,17 @@ static void add_windows(struct tree *t)
     if (s->windows.n == 0)
         return;
     t->in_window = NEW_ARRAY(t->arena, s->windows.n * n, node_id);
+    figure_id *figures = NEW_ARRAY(t->arena, s->windows.n * n, figure_id);
     for (uint32_t w = 0; w < s->windows.n; w++)
         for (size_t e = 0; e < n; e++) {
             node_id p = t->in_window[w * n + e] = end_in(t, e, w);
             const char *label = span_label(f, s, w);
             if (label)
-                compiled_add(t->building, PROPERTY_END, dotted(t->arena, t->ends.at[e].spot.path),
-                             label, p, NULL, NULL);
+                figures[w * n + e] =
+                    compiled_add(t->building, PROPERTY_END,
+                                 dotted(t->arena, t->ends.at[e].spot.path), label, p, NULL, NULL);
         }
+    t->exports->end_in = s->yearly ? figures : NULL;
 }
 
 static void add_ends(struct tree *t)

@@ -412,7 +412,8 @@ static void list_states(struct mixing *m)
         double share = fine ? 1 : 0;
         for (size_t k = 0; k < c->n && fine; k++)
             share *= figure_at_means(m->f, share_of(m, c, k));
-        x->states[i] = (struct hazard_state){combination_name(m->f->arena, c), share, m->units[i]};
+        x->states[i] = (struct hazard_state){
+            .name = combination_name(m->f->arena, c), .share = share, .unit = m->units[i]};
     }
 }
 
@@ -432,6 +433,7 @@ static void show_most(struct mixing *m)
     x->span = shown->span;
     x->ends = shown->ends;
     x->n_ends = shown->n_ends;
+    x->end_in = shown->end_in;
 }
 
 ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, const struct object *o,
@@ -451,6 +453,8 @@ ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, con
     m.b.unit->also = compiled_part(&m.b, o->id, PART_FREQUENCY);
     m.exports->frequency = m.b.unit->also->main;
     add_figures(&m);
+    for (size_t i = 0; i < m.exports->n_states; i++)
+        m.exports->states[i].weight = m.weights[i];
     m.b.unit->main = m.exports->risk;
     compiled_end(&m.b);
     *out = m.b.unit;

@@ -75,6 +75,8 @@
     X(CAIDI, "caidi", "mean time of an interruption (IEEE 1366)")                                  \
     X(ASAI, "asai", "share of time in which a customer is supplied (IEEE 1366)")                   \
     X(MAIFI, "maifi", "momentary interruptions of a customer in a year (IEEE 1366)")               \
+    X(BORNE, "borne", "risk as a perspective of the register bears it")                            \
+    X(CATEGORY, "category", "part of the risk that is damage of one category, whoever bears it")   \
     X(DEATH, "individual-risk", "probability per year that a given person of a group dies")        \
     X(INJURY, "injury-risk", "probability per year that a given person of a group is injured")     \
     X(FATALITIES, "fatalities", "expected deaths in a group per year")                             \
@@ -226,11 +228,13 @@ struct figures {
     struct strmap groups;          /* element -> struct groups: its common causes in the base */
     size_t n_indexed;              /* common causes of the base that are in `groups` */
     ARRAY(const struct quantity *) inputs;
-    ARRAY(const char *) input_names; /* "VH-51A#0": the same under all variants */
-    ARRAY(figure_id) of_node;        /* first figure of a node */
-    ARRAY(const char *) literals;    /* text of a CONST node, or NULL */
-    const struct diagram *itself;    /* of one variable: true when it is */
-    uint32_t n_stated;               /* expressions that documents state, each a node of its own */
+    ARRAY(const char *)
+    input_names;                  /* "VH-51A#0", "H-1/frequency#0": the same
+                                                   under all variants */
+    ARRAY(figure_id) of_node;     /* first figure of a node */
+    ARRAY(const char *) literals; /* text of a CONST node, or NULL */
+    const struct diagram *itself; /* of one variable: true when it is */
+    uint32_t n_stated;            /* expressions that documents state, each a node of its own */
     unsigned depth;
 };
 
@@ -332,6 +336,7 @@ struct event {
 struct hazard_state {
     const char *name;            /* "T1-OUT=none+T2-OUT=a-out" */
     double share;                /* of time, as evaluated when it was compiled */
+    node_id weight;              /* the same, in the section of the mean */
     const struct compiled *unit; /* NULL: there is no such hazard in it */
 };
 
@@ -351,7 +356,8 @@ struct hazard_exports {
     const uint32_t *of_year; /* NULL: yearly[0] holds in all */
     struct end *ends;
     size_t n_ends;
-    size_t n_outcomes; /* as the keys of the hazard's outcomes */
+    const figure_id *end_in; /* yearly span: probability of end e in window w, [w * n_ends + e] */
+    size_t n_outcomes;       /* as the keys of the hazard's outcomes */
     figure_id *probability, *frequency_of, *damage_of, *risk_of;
     figure_id frequency, damaging, damage, risk;
 };

@@ -2,9 +2,9 @@
 /* Finding a figure by its name, and what this version does not use. */
 #include <string.h>
 
-#include "figure/consequences.h"
 #include "figure/importance.h"
 #include "figure/states.h"
+#include "figure/supply.h"
 #include "figure/upkeep.h"
 
 /* "ID.rest@A+S=x+[name]" cut into its parts. */
@@ -151,6 +151,10 @@ static const struct part {
     REPAIRED(PROPERTY_UNAVAILABILITY),
     REPAIRED(PROPERTY_FAILURE_FREQUENCY),
     REPAIRED(PROPERTY_OUTAGE_TIME),
+    HARM(PROPERTY_DAMAGE), /* items that the chosen perspective does not count */
+    HARM(PROPERTY_CLEARANCE),
+    HARM(PROPERTY_BORNE),
+    HARM(PROPERTY_CATEGORY),
     HARM(PROPERTY_INTERRUPTIONS),
     HARM(PROPERTY_MOMENTARY),
     HARM(PROPERTY_CUSTOMER_TIME),
