@@ -148,6 +148,9 @@ ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,
 /* A decision: its options and their combinations weighed against doing nothing. */
 ohmen_status ohmen_weigh(ohmen_register *r, const ohmen_query *q, const char *decision,
                          ohmen_report **out, ohmen_error *e);
+/* The memo of one decision, to be attached to a request for money. */
+ohmen_status ohmen_memo(ohmen_register *r, const ohmen_query *q, const char *decision,
+                        ohmen_report **out, ohmen_error *e);
 /* The interval between routine tests of an element that costs least, with what each interval
  * costs per year in tests and in risk. OHMEN_COMPUTE for an element without a test, or on which
  * no hazard depends. */

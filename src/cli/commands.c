@@ -133,6 +133,16 @@ const struct command commands[] = {
              "over every hazard that one of them reaches.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
+    {"memo",
+     JOB_DECIDE,
+     {"DECISION", 1, 1, "the decision, such as D-TQ"},
+     .options = READING,
+     .brief = "one decision as a document to be signed",
+     .text = "Prints what is asked, what is recommended, what it costs, what it avoids and for "
+             "whom, how often it ends badly, what it rests on with its sources, what would turn "
+             "it, what is not covered, and who signs.",
+     .example = "ohmen -r skerry.ohmen memo D-TQ --width 80",
+     .run = command_memo},
     {"test-interval",
      JOB_DECIDE,
      {"ELEMENT", 1, 1, "an element with a routine test, such as VH-GAS2"},

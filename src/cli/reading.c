@@ -128,6 +128,13 @@ static ohmen_status make_weigh(ohmen_register *r, const struct args *args, ohmen
     return ohmen_weigh(r, &query, operand(args), out, e);
 }
 
+static ohmen_status make_memo(ohmen_register *r, const struct args *args, ohmen_report **out,
+                              ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_memo(r, &query, operand(args), out, e);
+}
+
 static ohmen_status make_test_interval(ohmen_register *r, const struct args *args,
                                        ohmen_report **out, ohmen_error *e)
 {
@@ -188,6 +195,11 @@ ohmen_status command_report(const struct call *call, ohmen_error *e)
 ohmen_status command_weigh(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_weigh, e);
+}
+
+ohmen_status command_memo(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_memo, e);
 }
 
 ohmen_status command_test_interval(const struct call *call, ohmen_error *e)

@@ -41,7 +41,7 @@ static void lean_row(struct job *j, struct block *b, const struct lean *x)
 static void lean_table(struct job *j, const struct leans *all)
 {
     struct report *r = j->report;
-    struct block *b = report_table(r, "rests-on", "What it rests on");
+    struct block *b = report_table(r, "rests-on", "The inputs that move it most");
     block_column(r, b, "input", "Input", "", STYLE_PLAIN);
     block_column(r, b, "name", "What it is", "", STYLE_PLAIN)->keep = 1;
     block_column(r, b, "now", "Mean", "", STYLE_PLAIN);
