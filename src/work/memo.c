@@ -189,6 +189,13 @@ static void avoids(struct memo *m)
                 *by ? "; for each: " : "", by, customers_words(m), deaths_words(m));
 }
 
+static void ends(struct memo *m)
+{
+    const char *words = endings_sentence(m->j, m->w);
+    if (*words)
+        report_note(m->j->report, "ends", "%s", words);
+}
+
 static void perspectives(struct memo *m)
 {
     const char *other = perspectives_sentence(m->j, m->w);
@@ -231,6 +238,7 @@ static void part_recommendation(struct memo *m)
     recommended(m);
     costs(m);
     avoids(m);
+    ends(m);
     perspectives(m);
     people(m);
     turns(m);

@@ -139,6 +139,8 @@ void part_together(struct job *j, const struct weighing *w);
 void part_customers_and_people(struct job *j, const struct weighing *w);
 /* Outcomes that hold much of the risk: how often now, and with the best alternative. */
 void part_endings(struct job *j, const struct weighing *w);
+/* The three of them that hold the greatest risk, in words. */
+const char *endings_sentence(struct job *j, const struct weighing *w);
 /* What is best to perspectives for which the best alternative is not; "" where it is for all. */
 const char *perspectives_sentence(struct job *j, const struct weighing *w);
 /* Hazards outside the focus that the best alternative changes; "" where there are none. */
