@@ -156,6 +156,9 @@ static void add_alternative(struct worth *x, struct alternative *alt, const stru
     alt->present_damage =
         compiled_add(b, PROPERTY_PRESENT_DAMAGE, alt->name, NULL, damage, NULL, NULL);
     alt->present_cost = compiled_add(b, PROPERTY_PRESENT_COST, alt->name, NULL, cost, NULL, NULL);
+    node_id horizon = money_annuity(&x->money, 0, x->w->horizon);
+    alt->annual_cost = compiled_add(b, PROPERTY_ANNUAL_COST, alt->name, NULL,
+                                    graph_op2(g, OP_DIVIDE, cost, horizon), NULL, NULL);
     alt->total = compiled_add(b, PROPERTY_TOTAL, alt->name, NULL, total, NULL, NULL);
     alt->net = alt->benefit = alt->ratio = FIGURE_NONE;
     if (alt->n == 0)
@@ -172,6 +175,7 @@ void worth_compile(struct figures *f, struct weighing *w, const struct variant *
                    const struct stretches *stretches)
 {
     struct worth x = {.f = f, .w = w};
+    figures_settings(f);
     compiled_begin(f, base, model_find(f->base, w->id), w->id, &x.b);
     money_begin(&x.money, f, &x.b, w->horizon);
     for (size_t i = 0; i < w->alternatives.n; i++)

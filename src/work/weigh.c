@@ -288,9 +288,10 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
     part_weighing_grid(j, w);
     report_note(
         j->report, "conventions",
-        "Present values at %s; investments at the start of their year, damage and running cost in "
-        "the middle of each year; damage counted: %s.",
+        "Present values at %s; investments at the start of their year, damage and running cost %s "
+        "of each year; damage counted: %s.",
         node_says(j->arena, node_get(model_find(j->model, REGISTER_ID)->node, "discount"), 40),
+        j->model->settings->yearly_amounts == YEARLY_END_OF_YEAR ? "at the end" : "in the middle",
         perspective_words(j));
     part_unused(j);
     part_cautions(j);
