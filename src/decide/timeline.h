@@ -14,14 +14,17 @@ struct service {
 
 struct service timeline_service(const struct figures *f, const char *option, double horizon);
 
-/* A stretch of the horizon in which the same options are in service. */
+/* A stretch of the horizon in which the same options are in service, renewed the same number of
+ * times, and commissioned or not. */
 struct stretch {
     double from, to;
     const struct variant *variant;
 };
 struct stretches ARRAY_BODY(struct stretch);
 
-/* Cuts the horizon where options of the alternative come or go, in order of time. */
+/* Cuts the horizon where options of the alternative come or go, are renewed so that something is new
+ * again, or have been commissioned; in order of time. OHMEN_COMPUTE where what holds together in a
+ * stretch contradicts or leaves the register wrong. */
 ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double horizon,
                           struct stretches *out, ohmen_error *e);
 

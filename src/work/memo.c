@@ -131,8 +131,7 @@ static void costs(struct memo *m)
                 "horizon.",
                 *once ? "an investment of " : "no investment", once,
                 yearly > 0 ? ", and to run it " : "", yearly > 0 ? money_rate(m, yearly) : "",
-                money(m, value_of(m, x->present_cost)),
-                money_rate(m, value_of(m, x->present_cost)));
+                money(m, value_of(m, x->present_cost)), money_rate(m, value_of(m, x->annual_cost)));
 }
 
 /* --- what it avoids --- */
