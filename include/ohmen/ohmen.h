@@ -95,6 +95,20 @@ typedef struct ohmen_query {
                                 it; NULL: all. A decision is about all hazards that it reaches */
     const char *date;        /* the day of evaluation, YYYY-MM-DD, until which evidence accrues;
                                 NULL: today (UTC). What the journal knew is another question */
+
+    /* Of ohmen_list and ohmen_hazards alone; the others do not look at it. */
+    const char *const *where; /* conditions, all of which must hold: FIELD=TEXT, FIELD!=TEXT,
+                                 FIELD<TEXT, FIELD<=TEXT, FIELD>TEXT, FIELD>=TEXT, FIELD~TEXT
+                                 (contains), FIELD= (not given), FIELD!= (given). FIELD is a
+                                 field of the documents ("owner", "test/every"), "id" or "name",
+                                 of ohmen_hazards also "rank", "frequency", "damaging", "damage",
+                                 "risk" and "criterion". OHMEN_UNKNOWN for a field that there is
+                                 not, with the nearest name; OHMEN_USAGE for what does not fit
+                                 the field */
+    size_t n_where;
+    const char *sort;         /* the field by which rows are ordered, those without it last, then
+                                 by id; NULL: by id, hazards by rank */
+    bool reverse;             /* from the greatest to the least; needs sort (OHMEN_USAGE) */
 } ohmen_query;
 ohmen_query ohmen_query_defaults(void);
 

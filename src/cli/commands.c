@@ -19,6 +19,7 @@ const char *const command_jobs[JOB_COUNT] = {
 #define WHEN_AND_WHOSE                                                                             \
     (OPTION_BIT(OPTION_AS_OF) | OPTION_BIT(OPTION_PERSPECTIVE) | OPTION_BIT(OPTION_DATE))
 #define READING (ON_REGISTER | FORM | WHEN_AND_WHOSE)
+#define CHOOSING (OPTION_BIT(OPTION_WHERE) | OPTION_BIT(OPTION_SORT) | OPTION_BIT(OPTION_REVERSE))
 #define READING_HAZARDS (READING | OPTION_BIT(OPTION_SITE))
 
 const struct command commands[] = {
@@ -69,7 +70,7 @@ const struct command commands[] = {
     {"hazards",
      JOB_RISK,
      {0},
-     .options = READING_HAZARDS,
+     .options = READING_HAZARDS | CHOOSING,
      .brief = "each hazard: frequency, damage, risk, rank",
      .text = "Prints each hazard with its frequency, the frequency of outcomes with damage, the "
              "mean damage, the risk (frequency times damage, in money per year) and its rank.",
@@ -89,7 +90,7 @@ const struct command commands[] = {
     {"list",
      JOB_RISK,
      {"KIND", 1, 1, "a section of the documents, such as elements, schemes, hazards or options"},
-     .options = READING_HAZARDS,
+     .options = READING_HAZARDS | CHOOSING,
      .brief = "everything of one kind, as a table",
      .text = "Prints all objects of one kind as a table. The kind is named as its section in the "
              "documents is.",

@@ -19,6 +19,10 @@ ohmen_query reading_query(const struct args *args)
     query.perspective = args->text[OPTION_PERSPECTIVE];
     query.date = args->text[OPTION_DATE];
     query.site = args->text[OPTION_SITE];
+    query.where = args->repeated[OPTION_WHERE].at;
+    query.n_where = args->repeated[OPTION_WHERE].n;
+    query.sort = args->text[OPTION_SORT];
+    query.reverse = args->given[OPTION_REVERSE];
     return query;
 }
 

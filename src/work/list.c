@@ -3,7 +3,7 @@
  * compares such objects by. `show` has the others. Owns nothing. */
 #include <string.h>
 
-#include "work/work.h"
+#include "work/filter.h"
 
 /* Columns of what one field says in a list. */
 enum { BRIEF = 100, ALTERNATIVES = 3 };
@@ -93,13 +93,34 @@ static const struct node *without_source(struct arena *a, const struct node *n)
     return plain ? rest->pairs[0].value : rest;
 }
 
+/* A day of review, marked where it has passed; then whether it has. */
+static void review_cells(struct job *j, struct row *row, const struct node *n)
+{
+    day due;
+    if (!n || !date_read(n->text, &due)) {
+        row_empty(j->report, row);
+        row_empty(j->report, row);
+        return;
+    }
+    bool overdue = due < j->date;
+    row_date(j->report, row, n->text)->mark = overdue ? "overdue" : NULL;
+    row_yes(j->report, row, overdue);
+}
+
+static bool is_review(const struct list_column *c)
+{
+    return text_equal(c->key, "review");
+}
+
 static void list_cell(struct job *j, struct row *row, const struct node *doc,
                       const struct list_column *c)
 {
     const struct node *n = NULL;
     for (size_t i = 0; i < ALTERNATIVES && !n && c->paths[i]; i++)
         n = node_at(j->arena, doc, c->paths[i]);
-    if (n)
+    if (is_review(c))
+        review_cells(j, row, n);
+    else if (n)
         row_text(j->report, row, node_says(j->arena, without_source(j->arena, n), BRIEF));
     else
         row_empty(j->report, row);
@@ -116,32 +137,35 @@ static void list_row(struct job *j, struct block *b, const struct object *o)
             list_cell(j, row, doc, &list_columns[i]);
 }
 
-/* A query for a site leaves out what stands elsewhere, of kinds that have a site. */
-static bool is_wanted(const struct job *j, const struct object *o)
-{
-    const struct node *site = node_get(o->node, "site");
-    if (o->kind == KIND_SITE)
-        return job_at_site(j, o->id);
-    if (!table_field(kinds[o->kind].table, "site"))
-        return true;
-    return job_at_site(j, site ? site->text : NULL);
-}
-
-static void list_table(struct job *j, enum kind kind)
+static void list_columns_of(struct job *j, struct block *b, enum kind kind)
 {
     struct report *r = j->report;
-    const struct objects *all = &j->model->of[kind];
-    struct block *b = report_table(r, kinds[kind].section, NULL);
+    const char *name = kind == KIND_DECISION ? "Question" : "Name";
     block_column(r, b, "id", kind_title(j->arena, kind), "", STYLE_PLAIN);
-    block_column(r, b, "name", kind == KIND_DECISION ? "Question" : "Name", "", STYLE_PLAIN)->keep =
-        5;
-    for (size_t i = 0; i < N_COLUMNS; i++)
-        if (list_columns[i].kind == kind)
-            block_column(r, b, list_columns[i].key, list_columns[i].head, "", STYLE_PLAIN)->keep =
-                list_columns[i].keep;
+    block_column(r, b, "name", name, "", STYLE_PLAIN)->keep = 5;
+    for (size_t i = 0; i < N_COLUMNS; i++) {
+        const struct list_column *c = &list_columns[i];
+        if (c->kind != kind)
+            continue;
+        block_column(r, b, c->key, c->head, "", STYLE_PLAIN)->keep = c->keep;
+        if (is_review(c))
+            block_column(r, b, "overdue", "Overdue", "", STYLE_PLAIN)->data = true;
+    }
+}
+
+static void list_table(struct job *j, enum kind kind, struct filter *f)
+{
+    const struct objects *all = &j->model->of[kind];
+    struct filter_items items = {0};
+    struct block *b = report_table(j->report, kinds[kind].section, NULL);
+    list_columns_of(j, b, kind);
     for (size_t i = 0; i < all->n; i++)
-        if (is_wanted(j, all->at[i]))
-            list_row(j, b, all->at[i]);
+        if (job_has_at_site(j, all->at[i]))
+            *array_push(j->arena, &items) = (struct filter_item){.object = all->at[i]};
+    filter_apply(f, &items);
+    for (size_t i = 0; i < items.n; i++)
+        list_row(j, b, items.at[i].object);
+    part_filter(j, f);
 }
 
 static ohmen_status unknown_kind(struct job *j, const char *section, ohmen_error *e)
@@ -164,15 +188,18 @@ static ohmen_status unknown_kind(struct job *j, const char *section, ohmen_error
 
 static ohmen_status run_list(struct job *j, void *ctx, ohmen_error *e)
 {
+    struct filter *f = NULL;
     enum kind kind = kind_of_section(ctx);
     if (kind == KIND_COUNT)
         return unknown_kind(j, ctx, e);
     ohmen_status status = job_load_model(j, e);
     if (status == OHMEN_OK)
         status = job_check_site(j, e);
+    if (status == OHMEN_OK)
+        status = filter_read(j, kind, NULL, 0, &f, e);
     if (status != OHMEN_OK)
         return status;
-    list_table(j, kind);
+    list_table(j, kind, f);
     return OHMEN_OK;
 }
 

@@ -80,6 +80,11 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e);
 /* Is the site (NULL: none) the one that the query asks for, or inside it? Always, where it
  * asks for none. */
 bool job_at_site(const struct job *j, const char *site);
+/* Is the site (NULL: none) this one, or inside it? */
+bool site_is_in(const struct model *m, const char *site, const char *whole);
+/* The same of an object: a site by itself, others by their field; always, where its kind has no
+ * such field. */
+bool job_has_at_site(const struct job *j, const struct object *o);
 
 /* Notes an object that cannot be evaluated (OHMEN_COMPUTE), and goes on; any other status is
  * handed on. */
