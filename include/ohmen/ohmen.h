@@ -155,6 +155,10 @@ ohmen_status ohmen_protection(ohmen_register *r, const ohmen_query *q, ohmen_rep
 /* Everything of one kind ("elements"), as a table. kind: a section of the documents. */
 ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
                         ohmen_report **out, ohmen_error *e);
+/* What is missing for the register to be kept alive: objects without owner, source, date of
+ * review, status or test, and reviews that are overdue on the day of evaluation. */
+ohmen_status ohmen_gaps(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                        ohmen_error *e);
 /* One object of any kind with all that it says; a hazard with the numbers of its event
  * tree, an element or a scheme with where it is used. */
 ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,

@@ -67,6 +67,20 @@ const struct command commands[] = {
              "copy of the file is not safe then.",
      .example = "ohmen -r skerry.ohmen backup skerry-2026-12-01.ohmen",
      .run = command_backup},
+    {"gaps",
+     JOB_KEEP,
+     {0},
+     .options = READING_HAZARDS,
+     .brief = "what is missing: owners, sources, reviews, tests",
+     .text =
+         "Prints each object that lacks something by which a register is kept alive: hazards, "
+         "decisions and options without an owner, hazards and decisions whose review has no "
+         "date or is overdue on the day of evaluation (--date), hazards without a status, or "
+         "being treated without a treatment, numbers without a source, sources that nobody has "
+         "looked up, elements whose failures nothing shows, and groups of people whom no hazard "
+         "harms. The report counts them in a chapter.",
+     .example = "ohmen -r skerry.ohmen gaps",
+     .run = command_gaps},
     {"hazards",
      JOB_RISK,
      {0},
@@ -92,8 +106,10 @@ const struct command commands[] = {
      {"KIND", 1, 1, "a section of the documents, such as elements, schemes, hazards or options"},
      .options = READING_HAZARDS | CHOOSING,
      .brief = "everything of one kind, as a table",
-     .text = "Prints all objects of one kind as a table. The kind is named as its section in the "
-             "documents is.",
+     .text = "Prints the objects of one kind as a table. The kind is named as its section in the "
+             "documents is. Conditions choose among them, and a field orders them: ohmen list "
+             "hazards --where \"review<2027-06-30\" --where status=open --sort review. A date of "
+             "review that has passed on the day of evaluation is marked as overdue.",
      .example = "ohmen -r skerry.ohmen list elements",
      .run = command_list},
     {"show",

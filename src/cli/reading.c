@@ -83,6 +83,13 @@ static const char *operand(const struct args *args)
     return args->n_operands > 0 ? args->operands[0] : NULL;
 }
 
+static ohmen_status make_gaps(ohmen_register *r, const struct args *args, ohmen_report **out,
+                              ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_gaps(r, &query, out, e);
+}
+
 static ohmen_status make_hazards(ohmen_register *r, const struct args *args, ohmen_report **out,
                                  ohmen_error *e)
 {
@@ -157,6 +164,11 @@ static ohmen_status make_verify(ohmen_register *r, const struct args *args, ohme
 {
     (void)args;
     return ohmen_verify(r, out, e);
+}
+
+ohmen_status command_gaps(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_gaps, e);
 }
 
 ohmen_status command_hazards(const struct call *call, ohmen_error *e)

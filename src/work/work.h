@@ -116,6 +116,11 @@ void part_unused(struct job *j);
 void part_linearity(struct job *j, const struct hazards *h);
 void part_cautions(struct job *j);
 
+/* What objects lack to be kept alive (gaps.c): a row each; and counted by what is lacking, as a
+ * chapter of the report. */
+void part_gaps(struct job *j);
+void part_gaps_counted(struct job *j);
+
 void part_weighing(struct job *j, struct weighing *w);
 void part_weighing_grid(struct job *j, struct weighing *w);
 /* One sentence: what is best, and what it is worth. */
