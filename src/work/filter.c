@@ -321,6 +321,47 @@ bool filter_orders(const struct filter *f)
     return f->sorted;
 }
 
+/* --- the fields that are asked for --- */
+
+/* In the order of the query: of its conditions, then of its order. */
+static const struct filter_field *named_field(const struct filter *f, size_t i)
+{
+    if (i < f->conditions.n)
+        return &f->conditions.at[i].field;
+    return f->sorted && i == f->conditions.n ? &f->order : NULL;
+}
+
+static bool is_new_field(const struct filter *f, size_t i)
+{
+    const struct filter_field *field = named_field(f, i);
+    bool is_new = field->origin == FILTER_FIELD;
+    for (size_t k = 0; is_new && k < i; k++)
+        is_new = !text_equal(named_field(f, k)->path, field->path);
+    return is_new;
+}
+
+const struct filter_field *filter_asked(const struct filter *f, size_t i)
+{
+    size_t n = 0;
+    for (size_t k = 0; named_field(f, k); k++)
+        if (is_new_field(f, k) && n++ == i)
+            return named_field(f, k);
+    return NULL;
+}
+
+const char *filter_column_key(struct arena *a, const char *path)
+{
+    char *key = arena_str(a, path);
+    for (char *p = key; *p; p++) {
+        bool kept = (*p >= 'a' && *p <= 'z') || (*p >= '0' && *p <= '9');
+        if (*p >= 'A' && *p <= 'Z')
+            *p = (char)(*p - 'A' + 'a');
+        else if (!kept)
+            *p = '-';
+    }
+    return key;
+}
+
 /* --- the note --- */
 
 static const char *conditions_words(const struct filter *f)
@@ -339,8 +380,8 @@ void part_filter(struct job *j, const struct filter *f)
                     conditions_words(f));
     if (f->without_value)
         report_note(j->report, "filter-formulas",
-                    "Left out: %s that %s a field compared here by a formula of other objects, "
-                    "which has no value in a list.",
+                    "Left out: %s that %s a field compared here by a formula of other objects. "
+                    "Its value is a figure, which a list does not compute.",
                     count_words(j->arena, f->without_value, "object", "objects"),
                     f->without_value == 1 ? "states" : "state");
     if (f->sorted)

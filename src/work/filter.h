@@ -49,6 +49,12 @@ void filter_apply(struct filter *f, struct filter_items *items);
 /* Is there an order asked for? */
 bool filter_orders(const struct filter *f);
 
+/* The i-th field of the documents that the query names, each once; NULL behind the last one. A
+ * table shows them even where it has no column for them otherwise. */
+const struct filter_field *filter_asked(const struct filter *f, size_t i);
+/* Its path as the key of such a column: "test/every" is test-every. */
+const char *filter_column_key(struct arena *a, const char *path);
+
 /* A note: how many are shown, and why these; nothing without conditions and order. */
 void part_filter(struct job *j, const struct filter *f);
 

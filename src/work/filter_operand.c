@@ -18,7 +18,7 @@ struct reading {
 
 static ohmen_status no_fit(const struct reading *r, const char *what, ohmen_error *e)
 {
-    return error_set(e, OHMEN_USAGE, "in \"%s\", \"%s\" is no %s", r->condition, r->text, what);
+    return error_set(e, OHMEN_USAGE, "in \"%s\", \"%s\" is %s", r->condition, r->text, what);
 }
 
 static bool all_digits(const char *s, size_t most)
@@ -38,7 +38,7 @@ enum { COUNT_DIGITS = 15, YEAR_DIGITS = 4 }; /* digits that a double holds exact
 static ohmen_status read_count(const struct reading *r, ohmen_error *e)
 {
     if (!all_digits(r->text, COUNT_DIGITS))
-        return no_fit(r, "whole number such as 12", e);
+        return no_fit(r, "no whole number such as 12", e);
     take_number(r, (double)strtoll(r->text, NULL, 10));
     return OHMEN_OK;
 }
@@ -52,7 +52,9 @@ static ohmen_status read_date(const struct reading *r, ohmen_error *e)
         atoi(r->text) > 0)
         d = date_of(atoi(r->text), 1, 1);
     else if (!date_read(r->text, &d))
-        return no_fit(r, when ? "date such as 2027-06-30 and no year" : "date such as 2027-06-30",
+        return no_fit(r,
+                      when ? "neither a year such as 2027 nor a date such as 2027-06-30"
+                           : "no date such as 2027-06-30",
                       e);
     take_number(r, (double)d);
     return OHMEN_OK;
@@ -102,7 +104,7 @@ static ohmen_status read_quantity(const struct reading *r, ohmen_error *e)
                          field_dimension_words(r->field->dim));
     double x = expr_constant(q->expr);
     if (!isfinite(x))
-        return no_fit(r, "finite number", e);
+        return no_fit(r, "no finite number", e);
     take_number(r, x);
     r->out->dim = q->dim;
     return check_dimension(r, q->dim, e);

@@ -23,8 +23,8 @@ static const struct list_column list_columns[] = {
     {KIND_REGISTER, "discount", "Interest", 2, {"discount"}},
     {KIND_SOURCE, "kind", "Kind", 4, {"kind"}},
     {KIND_SOURCE, "by", "By", 1, {"by"}},
-    {KIND_SOURCE, "date", "Date", 3, {"date"}},
-    {KIND_SOURCE, "verified", "Verified", 2, {"verified"}},
+    {KIND_SOURCE, "date", "Date", 2, {"date"}},
+    {KIND_SOURCE, "verified", "Verified", 3, {"verified"}},
     {KIND_SITE, "in", "In", 4, {"in"}},
     {KIND_SITE, "customers", "Customers", 3, {"customers"}},
     {KIND_SITE, "load", "Load", 2, {"load"}},
@@ -37,35 +37,40 @@ static const struct list_column list_columns[] = {
     {KIND_RATE, "per", "Per", 1, {"per"}},
     {KIND_RATE, "source", "Source", 2, {"prior/source", "source"}},
     {KIND_TYPE, "kind", "Kind", 3, {"kind"}},
-    {KIND_TYPE, "per-demand", "Fails on demand", 4, {"per-demand"}},
+    {KIND_TYPE, "per-demand", "Fails on demand", 3, {"per-demand"}},
+    {KIND_TYPE, "undetected", "Fails undetected", 4, {"undetected"}},
     {KIND_TYPE, "source", "Source", 2, {"per-demand/source", "source"}},
-    {KIND_ELEMENT, "kind", "Kind", 2, {"kind"}},
-    {KIND_ELEMENT, "site", "Site", 1, {"site"}},
-    {KIND_ELEMENT, "type", "Type", 3, {"type"}},
-    {KIND_ELEMENT, "per-demand", "Fails on demand", 4, {"per-demand"}},
+    {KIND_ELEMENT, "kind", "Kind", 1, {"kind"}},
+    {KIND_ELEMENT, "site", "Site", 4, {"site"}},
+    {KIND_ELEMENT, "type", "Type", 4, {"type"}},
+    {KIND_ELEMENT, "per-demand", "Fails on demand", 3, {"per-demand"}},
+    {KIND_ELEMENT, "test-every", "Tested every", 4, {"test/every"}},
     {KIND_ELEMENT, "source", "Source", 2, {"per-demand/source", "source"}},
     {KIND_COMMON_CAUSE, "beta", "Beta", 4, {"beta"}},
     {KIND_COMMON_CAUSE, "of", "Elements", 3, {"of"}},
     {KIND_COMMON_CAUSE, "source", "Source", 2, {"source"}},
     {KIND_SCHEME, "site", "Site", 2, {"site"}},
     {KIND_SCHEME, "works", "Works by", 4, {"works"}},
-    {KIND_HAZARD, "site", "Site", 3, {"site"}},
-    {KIND_HAZARD, "frequency", "Frequency as stated", 4, {"frequency"}},
-    {KIND_HAZARD, "owner", "Owner", 1, {"owner"}},
-    {KIND_HAZARD, "status", "Status", 2, {"status"}},
-    {KIND_HAZARD, "review", "Review", 2, {"review"}},
+    {KIND_HAZARD, "site", "Site", 2, {"site"}},
+    {KIND_HAZARD, "frequency", "Frequency as stated", 1, {"frequency"}},
+    {KIND_HAZARD, "owner", "Owner", 3, {"owner"}},
+    {KIND_HAZARD, "status", "Status", 4, {"status"}},
+    {KIND_HAZARD, "review", "Review", 5, {"review"}},
     {KIND_STATE, "is", "Is", 4, {"is"}},
     {KIND_STATE, "varies", "Varies", 3, {"varies"}},
     {KIND_OPTION, "site", "Site", 2, {"site"}},
     {KIND_OPTION, "invest", "Investment", 4, {"invest/is", "invest"}},
     {KIND_OPTION, "running", "Running cost", 3, {"running/is", "running"}},
     {KIND_OPTION, "in-service", "In service", 3, {"in-service"}},
+    {KIND_OPTION, "owner", "Owner", 3, {"owner"}},
     {KIND_OPTION, "life", "Life", 2, {"life"}},
-    {KIND_DECISION, "options", "Options", 4, {"options"}},
-    {KIND_DECISION, "owner", "Owner", 2, {"owner"}},
-    {KIND_DECISION, "review", "Review", 3, {"review"}},
+    {KIND_DECISION, "options", "Options", 3, {"options"}},
+    {KIND_DECISION, "owner", "Owner", 4, {"owner"}},
+    {KIND_DECISION, "review", "Review", 5, {"review"}},
     {KIND_PLAN, "options", "Options", 4, {"options"}},
 };
+
+struct columns ARRAY_BODY(struct list_column);
 
 enum { N_COLUMNS = sizeof list_columns / sizeof *list_columns };
 
@@ -126,45 +131,95 @@ static void list_cell(struct job *j, struct row *row, const struct node *doc,
         row_empty(j->report, row);
 }
 
-static void list_row(struct job *j, struct block *b, const struct object *o)
+static void list_row(struct job *j, struct block *b, const struct object *o,
+                     const struct columns *columns)
 {
     struct row *row = block_row(j->report, b);
     const struct node *doc = object_document(j->arena, o);
     row_text(j->report, row, o->id);
     row_text(j->report, row, object_name(o));
-    for (size_t i = 0; i < N_COLUMNS; i++)
-        if (list_columns[i].kind == o->kind)
-            list_cell(j, row, doc, &list_columns[i]);
+    for (size_t i = 0; i < columns->n; i++)
+        list_cell(j, row, doc, &columns->at[i]);
 }
 
-static void list_columns_of(struct job *j, struct block *b, enum kind kind)
+/* --- columns --- */
+
+/* A field that the query asks for is dropped last. */
+enum { KEEP_NAME = 5, KEEP_ASKED = 6 };
+
+static bool shows(const struct list_column *c, const char *path)
+{
+    for (size_t i = 0; i < ALTERNATIVES && c->paths[i]; i++)
+        if (text_equal(c->paths[i], path))
+            return true;
+    return false;
+}
+
+/* The path without the key of a short form: documents may leave it out. */
+static const char *short_path(struct arena *a, const char *path)
+{
+    static const char key[] = "/is";
+    size_t n = strlen(path), m = strlen(key);
+    return n > m && text_equal(path + n - m, key) ? arena_strn(a, path, n - m) : NULL;
+}
+
+static void ask_column(struct job *j, struct columns *columns, enum kind kind, const char *path)
+{
+    const char *key = filter_column_key(j->arena, path);
+    for (size_t i = 0; i < columns->n; i++) {
+        struct list_column *c = &columns->at[i];
+        bool shown = shows(c, path);
+        c->keep = shown ? KEEP_ASKED : c->keep;
+        if (shown || text_equal(c->key, key))
+            return;
+    }
+    *array_push(j->arena, columns) =
+        (struct list_column){kind, key, path, KEEP_ASKED, {path, short_path(j->arena, path)}};
+}
+
+/* Those of the kind, and behind them the fields that the query asks for beside them. */
+static struct columns columns_for(struct job *j, enum kind kind, const struct filter *f)
+{
+    struct columns columns = {0};
+    const struct filter_field *asked;
+    for (size_t i = 0; i < N_COLUMNS; i++)
+        if (list_columns[i].kind == kind)
+            *array_push(j->arena, &columns) = list_columns[i];
+    for (size_t i = 0; (asked = filter_asked(f, i)); i++)
+        ask_column(j, &columns, kind, asked->path);
+    return columns;
+}
+
+/* --- the table --- */
+
+static struct block *make_table(struct job *j, enum kind kind, const struct columns *columns)
 {
     struct report *r = j->report;
     const char *name = kind == KIND_DECISION ? "Question" : "Name";
+    struct block *b = report_table(r, kinds[kind].section, NULL);
     block_column(r, b, "id", kind_title(j->arena, kind), "", STYLE_PLAIN);
-    block_column(r, b, "name", name, "", STYLE_PLAIN)->keep = 5;
-    for (size_t i = 0; i < N_COLUMNS; i++) {
-        const struct list_column *c = &list_columns[i];
-        if (c->kind != kind)
-            continue;
+    block_column(r, b, "name", name, "", STYLE_PLAIN)->keep = KEEP_NAME;
+    for (size_t i = 0; i < columns->n; i++) {
+        const struct list_column *c = &columns->at[i];
         block_column(r, b, c->key, c->head, "", STYLE_PLAIN)->keep = c->keep;
         if (is_review(c))
             block_column(r, b, "overdue", "Overdue", "", STYLE_PLAIN)->data = true;
     }
+    return b;
 }
 
 static void list_table(struct job *j, enum kind kind, struct filter *f)
 {
     const struct objects *all = &j->model->of[kind];
     struct filter_items items = {0};
-    struct block *b = report_table(j->report, kinds[kind].section, NULL);
-    list_columns_of(j, b, kind);
+    struct columns columns = columns_for(j, kind, f);
+    struct block *b = make_table(j, kind, &columns);
     for (size_t i = 0; i < all->n; i++)
         if (job_has_at_site(j, all->at[i]))
             *array_push(j->arena, &items) = (struct filter_item){.object = all->at[i]};
     filter_apply(f, &items);
     for (size_t i = 0; i < items.n; i++)
-        list_row(j, b, items.at[i].object);
+        list_row(j, b, items.at[i].object, &columns);
     part_filter(j, f);
 }
 

@@ -143,7 +143,7 @@ static void number_cell(struct job *j, struct row *row, figure_id id)
     row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
 }
 
-static void hazard_row(struct job *j, struct block *b, size_t rank, const struct compiled *c)
+static struct row *hazard_row(struct job *j, struct block *b, size_t rank, const struct compiled *c)
 {
     const struct hazard_exports *x = exports(c);
     struct row *row = block_row(j->report, b);
@@ -156,6 +156,7 @@ static void hazard_row(struct job *j, struct block *b, size_t rank, const struct
     number_cell(j, row, x->risk);
     if (*criteria_word(j, 0))
         row_text(j->report, row, criteria_word(j, risk_of(j, c)));
+    return row;
 }
 
 const struct filter_column hazard_columns[N_HAZARD_COLUMNS] = {
@@ -206,18 +207,43 @@ static struct block *hazards_table(struct job *j, const char *title)
     return b;
 }
 
+/* Fields that the query asks for, behind the figures. */
+enum { KEEP_ASKED = 6, ASKED_COLUMNS = 100 };
+
+static void asked_columns(struct job *j, struct block *b, const struct filter *f)
+{
+    const struct filter_field *x;
+    for (size_t i = 0; f && (x = filter_asked(f, i)); i++) {
+        const char *key = filter_column_key(j->arena, x->path);
+        block_column(j->report, b, key, x->path, "", STYLE_PLAIN)->keep = KEEP_ASKED;
+    }
+}
+
+static void asked_cells(struct job *j, struct row *row, const struct filter *f,
+                        const struct filter_item *item)
+{
+    const struct filter_field *x;
+    for (size_t i = 0; f && (x = filter_asked(f, i)); i++) {
+        const char *text = filter_value_of(j, x, item).text;
+        row_text(j->report, row, text ? brief(j->arena, text, ASKED_COLUMNS) : NULL);
+    }
+}
+
 void part_hazards_where(struct job *j, const struct hazards *h, struct filter *f)
 {
     struct filter_items items = {0};
     bool by_another = f && filter_orders(f);
     struct block *b = hazards_table(j, by_another ? "Hazards" : "Hazards by risk");
+    asked_columns(j, b, f);
     size_t *order = by_risk(j, h);
     for (size_t i = 0; i < h->n; i++)
         *array_push(j->arena, &items) = hazard_item(j, h->at[order[i]], i);
     if (f)
         filter_apply(f, &items);
-    for (size_t i = 0; i < items.n; i++)
-        hazard_row(j, b, items.at[i].index + 1, h->at[order[items.at[i].index]]);
+    for (size_t i = 0; i < items.n; i++) {
+        size_t rank = items.at[i].index;
+        asked_cells(j, hazard_row(j, b, rank + 1, h->at[order[rank]]), f, &items.at[i]);
+    }
     if (f)
         part_filter(j, f);
 }

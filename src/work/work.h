@@ -150,6 +150,9 @@ const char *figure_source(struct job *j, figure_id id);
  * `most` columns. */
 const char *node_says(struct arena *a, const struct node *n, size_t most);
 
+/* A text, or what of it fits into `most` columns, with dots. The result may be the text. */
+const char *brief(struct arena *a, const char *text, size_t most);
+
 /* What a document says of an object: a map of its fields, in the order of their table. */
 const struct node *object_document(struct arena *a, const struct object *o);
 
