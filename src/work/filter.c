@@ -260,10 +260,21 @@ static void select_items(struct filter *f, struct filter_items *items)
 
 /* --- order --- */
 
+enum { ORDER_BITS = 40 }; /* of a number that count when it is sorted: about 12 digits */
+
+/* The same quantity in two units is one, so that ids decide. */
+static double rounded(double x)
+{
+    int exponent;
+    double part = frexp(x, &exponent);
+    return ldexp(rint(ldexp(part, ORDER_BITS)), exponent - ORDER_BITS);
+}
+
 struct ordered {
     struct filter_item item;
     struct filter_value value;
     const char *folded, *unit;
+    double rounded; /* value.value */
     bool reverse;
 };
 
@@ -275,7 +286,7 @@ static int compare_values(const struct ordered *a, const struct ordered *b)
         return text_compare(a->folded, b->folded);
     if (!text_equal(a->unit, b->unit))
         return text_compare(a->unit, b->unit);
-    return (a->value.value > b->value.value) - (a->value.value < b->value.value);
+    return (a->rounded > b->rounded) - (a->rounded < b->rounded);
 }
 
 static int by_value(const void *p, const void *q)
@@ -299,6 +310,7 @@ static void sort_items(struct filter *f, struct filter_items *items)
                                       .value = v,
                                       .folded = utf8_fold(a, v.text ? v.text : ""),
                                       .unit = dim_unit(a, &f->job->model->units, v.dim),
+                                      .rounded = rounded(v.value),
                                       .reverse = f->reverse};
     }
     if (items->n > 1)
