@@ -87,7 +87,8 @@ const struct command commands[] = {
      .options = READING_HAZARDS | CHOOSING,
      .brief = "each hazard: frequency, damage, risk, rank",
      .text = "Prints each hazard with its frequency, the frequency of outcomes with damage, the "
-             "mean damage, the risk (frequency times damage, in money per year) and its rank.",
+             "mean damage, the risk (frequency times damage, in money per year) and its rank. "
+             "Conditions (--where) choose among them and leave the ranks as they are.",
      .example = "ohmen -r skerry.ohmen hazards",
      .run = command_hazards},
     {"protection",

@@ -148,7 +148,10 @@ static void put_row(struct html *h, const struct table_shape *t, size_t i, const
 
 static void put_none(struct html *h, const struct table_shape *t)
 {
-    text_printf(h->out, "<tr><td colspan=\"%zu\">(none)</td></tr>\n", t->n_columns);
+    size_t n = 0;
+    for (size_t j = 0; j < t->n_columns; j++)
+        n += !t->columns[j].data;
+    text_printf(h->out, "<tr><td colspan=\"%zu\">(none)</td></tr>\n", n);
 }
 
 static void put_caption(struct html *h, const char *element, const char *caption)

@@ -76,7 +76,7 @@ START_TEST(columns_of_data_are_not_on_a_page)
     report_write_csv(&csv, &report);
     report_write_json(&json, &report);
     report_write_html(&html, &report);
-    ck_assert_str_eq(text_str(&csv), "id,due,late\nH-1,2026-05-01,yes\n");
+    ck_assert_str_eq(text_str(&csv), "id,due,late\r\nH-1,2026-05-01,yes\r\n");
     ck_assert_ptr_nonnull(strstr(text_str(&json), "\"late\": true"));
     ck_assert_ptr_nonnull(strstr(text_str(&html), "overdue"));
     ck_assert_ptr_null(strstr(text_str(&html), "Late"));
