@@ -54,6 +54,7 @@ ohmen_status command_new(const struct call *call, ohmen_error *e);
 ohmen_status command_backup(const struct call *call, ohmen_error *e);
 ohmen_status command_import(const struct call *call, ohmen_error *e);
 ohmen_status command_export(const struct call *call, ohmen_error *e);
+ohmen_status command_gaps(const struct call *call, ohmen_error *e);
 ohmen_status command_hazards(const struct call *call, ohmen_error *e);
 ohmen_status command_protection(const struct call *call, ohmen_error *e);
 ohmen_status command_list(const struct call *call, ohmen_error *e);

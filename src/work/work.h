@@ -90,6 +90,11 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e);
 /* Is the site (NULL: none) the one that the query asks for, or inside it? Always, where it
  * asks for none. */
 bool job_at_site(const struct job *j, const char *site);
+/* Is the site (NULL: none) this one, or inside it? */
+bool site_is_in(const struct model *m, const char *site, const char *whole);
+/* The same of an object: a site by itself, others by their field; always, where its kind has no
+ * such field. */
+bool job_has_at_site(const struct job *j, const struct object *o);
 
 /* Notes an object that cannot be evaluated (OHMEN_COMPUTE), and goes on; any other status is
  * handed on. */
@@ -120,6 +125,11 @@ void part_not_computed(struct job *j);
 void part_unused(struct job *j);
 void part_linearity(struct job *j, const struct hazards *h);
 void part_cautions(struct job *j);
+
+/* What objects lack to be kept alive (gaps.c): a row each; and counted by what is lacking, as a
+ * chapter of the report. */
+void part_gaps(struct job *j);
+void part_gaps_counted(struct job *j);
 
 #define HOURS_PER_YEAR 8760.
 
@@ -206,6 +216,9 @@ const char *figure_source(struct job *j, figure_id id);
 /* A node in one line: a scalar's text, or its flow form, without the outer brackets; cut at
  * `most` columns. */
 const char *node_says(struct arena *a, const struct node *n, size_t most);
+
+/* A text, or what of it fits into `most` columns, with dots. The result may be the text. */
+const char *brief(struct arena *a, const char *text, size_t most);
 
 /* What a document says of an object: a map of its fields, in the order of their table. */
 const struct node *object_document(struct arena *a, const struct object *o);
