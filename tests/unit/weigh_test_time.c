@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Options over time, by hand: when yearly amounts are paid, renewals, commissioning periods, worth at
- * the end, what two options settle, and what is new when. */
+/* Options over time, by hand: when yearly amounts are paid, renewals, commissioning periods, worth
+ * at the end, what two options settle, and what is new when. */
 #include <math.h>
 
 #include "loaded.h"
@@ -173,8 +173,8 @@ END_TEST
 /* --- renewals --- */
 
 /* Paid in 2029 (year 1), in service from 2030 (t = 2) with a life of 4 a and a horizon of 13 a:
- * renewed at t = 6 and 10, paid in the years 5 and 9. Half of 1000 EUR per a is avoided from t = 2 to
- * 13 without gap. */
+ * renewed at t = 6 and 10, paid in the years 5 and 9. Half of 1000 EUR per a is avoided from t = 2
+ * to 13 without gap. */
 START_TEST(renewed_to_the_end)
 {
     struct arena *a = arena_new(NULL);
@@ -343,8 +343,8 @@ END_TEST
 
 /* --- combinations --- */
 
-/* A sets 0.5 per a, B 0.25 per a, and together they make 0.2 per a and a second hazard of 70 EUR per
- * a. C scales: it goes with A or B by themselves not at all, for they set what it scales. */
+/* A sets 0.5 per a, B 0.25 per a, and together they make 0.2 per a and a second hazard of 70 EUR
+ * per a. C scales: it goes with A or B by themselves not at all, for they set what it scales. */
 START_TEST(settled)
 {
     struct arena *a = arena_new(NULL);
