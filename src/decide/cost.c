@@ -48,9 +48,9 @@ static void add_renewals(struct costing *c, node_id invest)
 {
     const struct register_settings *s = c->m->f->base->settings;
     day on = c->option->invest->on;
-    double first = on == DAY_NONE ? 0 : horizon_years(s, on);
-    if (first > 0)
-        first = fmin(first, timeline_year(s, on) + LAST_DAY);
+    double first = 0;
+    if (on != DAY_NONE)
+        first = fmin(horizon_years(s, on), timeline_calendar_year(s, on) + LAST_DAY);
     for (size_t k = 1; k <= life_renewals(&c->life); k++) {
         double year = floor(first + (double)k * c->life.length + SAME_INSTANT);
         if (year >= 0 && year < c->m->horizon)

@@ -113,8 +113,13 @@ ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double
     return OHMEN_OK;
 }
 
-double timeline_year(const struct register_settings *s, day d)
+double timeline_calendar_year(const struct register_settings *s, day d)
 {
     double year = date_year(d) - date_year(horizon_start(s));
-    return fmax(horizon_years(s, d) < year ? year - 1 : year, 0);
+    return horizon_years(s, d) < year ? year - 1 : year;
+}
+
+double timeline_year(const struct register_settings *s, day d)
+{
+    return fmax(timeline_calendar_year(s, d), 0);
 }

@@ -31,5 +31,7 @@ ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double
 /* The year of the horizon in which a day lies, from 0; what is paid before is paid at its
  * start. By the calendar: the last day of a leap year lies in that year. */
 double timeline_year(const struct register_settings *s, day d);
+/* The same; below 0 for what lies before. */
+double timeline_calendar_year(const struct register_settings *s, day d);
 
 #endif

@@ -146,7 +146,7 @@ void check_combinations(struct checking *c, const struct object *o)
                                         : NULL;
         if (text_equal(row->key, o->id))
             diag_add(c->diags, row->place, "an option cannot name itself in \"combine\"");
-        else if (theirs && !node_equal(theirs, row->value))
+        else if (theirs && text_compare(row->key, o->id) < 0 && !node_equal(theirs, row->value))
             diag_add(c->diags, row->place,
                      "the options \"%s\" and \"%s\" each have a \"combine\" for the other, and "
                      "these differ",
