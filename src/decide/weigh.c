@@ -9,6 +9,7 @@
 
 #include "decide/alternatives.h"
 #include "decide/cost.h"
+#include "decide/flow.h"
 #include "decide/worth.h"
 #include "figure/compile.h"
 #include "figure/supply.h"
@@ -338,6 +339,10 @@ ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohm
     if (o && o->kind == KIND_DECISION) {
         status = weigh_compile(f, id, &w, e);
         c = status == OHMEN_OK ? w->unit : NULL;
+        const struct flow *unused;
+        const struct alternative *x = c && dot ? flow_alternative(f, w, dot + 1) : NULL;
+        if (x)
+            status = flow_compile(f, w, x, &unused, e);
     } else if (o && o->kind == KIND_OPTION) {
         status = cost_compile(f, o->id, &c, e);
     } else {
