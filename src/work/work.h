@@ -41,7 +41,7 @@ struct job {
     struct store *store;
     uint64_t at; /* entry that is looked at */
     ohmen_query query;
-    day date; /* of evaluation */
+    day date;                     /* of evaluation */
     struct store_objects objects; /* as of `at` */
     struct model *model;
     struct figures *figures;

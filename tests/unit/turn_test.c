@@ -198,6 +198,31 @@ START_TEST(what_varies_has_no_percentiles)
 }
 END_TEST
 
+/* Under operating states, of which one doubles the frequency: what is stated once moves in all.
+ * net = 0.8 x 0.5 (0.9 + 2 x 0.1) 1000 A - 900 = 440 A - 900. */
+START_TEST(operating_states)
+{
+    struct loaded l;
+    struct weighing *w;
+    struct turns t;
+    double a = annuity(0.05, 10);
+    find(&l,
+         SETTINGS("5 % per a") "hazards: {H: {name: H, frequency: 0.5 per a, " LOST(
+             "1000 EUR") "}}\n"
+                         "states: {S: {name: S, varies: {b-out: 0.1, normal: rest}, when: {b-out: "
+                         "{hazards: {H: {frequency: 2 * was}}}}}}\n"
+                         "options: {A: {name: A, invest: 900 EUR, change: {hazards: {H: "
+                         "{frequency: 0.2 * was}}}}}\n"
+                         "decisions: {D: {question: What?, options: [A]}}\n",
+         &w, &t);
+    check_at(&t, "D.turns-at[A.invest].A.do-nothing.above", 900, 440 * a);
+    check_at(&t, "D.turns-at[H.frequency@S=normal].A.do-nothing.below", 0.5, 900 / (880 * a));
+    check_at(&t, "D.turns-at[H.damage.lost.loss@S=b-out].A.do-nothing.below", 1000,
+             900 / (0.44 * a));
+    ck_assert_uint_eq(t.list.n, 4); /* interest too; the share cannot be below 0 */
+}
+END_TEST
+
 /* --- shares --- */
 
 /* A relay that fails with q; the option's own with q' = 0.01. Damage 100 kEUR when it fails.
@@ -460,6 +485,7 @@ int main(void)
     tcase_add_test(t, a_frequency_that_is_stated_anew);
     tcase_add_test(t, rates_and_what_is_known_of_them);
     tcase_add_test(t, what_varies_has_no_percentiles);
+    tcase_add_test(t, operating_states);
     tcase_add_test(t, probabilities_stay_between_0_and_1);
     tcase_add_test(t, the_rest_is_a_share);
     tcase_add_test(t, two_roots);
