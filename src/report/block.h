@@ -26,12 +26,19 @@ enum cell_type {
     CELL_YES     /* number 1 or 0, printed as yes or no */
 };
 
-/* How a column of numbers is printed. */
+/* How a column of numbers is printed: three significant digits, always. Zeros at the end of a
+ * fraction are printed where the number was rounded, and left out where it is exact (to twelve
+ * digits): 1.40 and 12.0 were 1.398 and 12.02, 1.4 and 12 are just that. Whole numbers stay as
+ * they are: 12300. */
 enum number_style {
-    STYLE_PLAIN,       /* three significant digits; below 0.01 and from 1e5 with an exponent:
-                          0.0123, 1.23e-3, 12300, 1.23e5. Zeros at the end of a fraction
-                          are not printed */
-    STYLE_MONEY,       /* prefix k, M or G chosen once for the column: "kEUR" in the head */
+    STYLE_PLAIN,       /* below 0.01 and from 1e5 with an exponent: 0.0123, 1.23e-3, 12300,
+                          1.23e5 */
+    STYLE_MONEY,       /* prefix k, M or G chosen once for the column, "kEUR" in the head: that of
+                          the largest amount, 1 to 999 of it; the next lower one where the largest
+                          then has four digits before its point and the smallest would stand below
+                          0.1 otherwise: 1570 and 29.9, not 1.57 and 0.0299. In it 12.4, -34.7
+                          and 0.00895; an exponent below 0.001 alone. Without a unit no prefix:
+                          8950000 */
     STYLE_FREQUENCY,   /* per year; below 0.1 with an exponent, as 2.94e-3, and, in a cell of
                           its own when there is room, as "1 in 340 a" */
     STYLE_PROBABILITY, /* as PLAIN: 0.0123, 4.1e-5, 1; more digits where a number below 1

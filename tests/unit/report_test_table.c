@@ -54,6 +54,37 @@ START_TEST(a_small_table)
 }
 END_TEST
 
+/* The amounts of one column have one prefix, that of the largest, and three digits each: by
+ * hand from the rule of STYLE_MONEY. The second column keeps a prefix with four digits before
+ * the point, for 3.2 would be 0.0032 in the next one. */
+START_TEST(amounts_of_one_column)
+{
+    static const struct {
+        double net, damage;
+    } rows[] = {{12412, 465000}, {1398, 29900},    {8.95, 1571000}, {0, 3204},
+                {-32000, 70100}, {-34740, 999600}, {0.4, 57000}};
+    struct block *b = report_table(&report, "t", NULL);
+    block_column(&report, b, "net", "Net", "EUR", STYLE_MONEY);
+    block_column(&report, b, "damage", "Damage", "EUR", STYLE_MONEY);
+    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
+        struct row *row = block_row(&report, b);
+        row_number(&report, row, rows[i].net, NULL);
+        row_number(&report, row, rows[i].damage, NULL);
+    }
+    static const char *const expected = "      Net   Damage\n"
+                                        "     kEUR     kEUR\n"
+                                        "------------------\n"
+                                        " 12.4       465\n"
+                                        "  1.40       29.9\n"
+                                        "  0.00895  1570\n"
+                                        "  0           3.20\n"
+                                        "-32          70.1\n"
+                                        "-34.7      1000\n"
+                                        "  4e-4       57\n";
+    ck_assert_str_eq(text_of(arena, &report, 80, true, false), expected);
+}
+END_TEST
+
 /* Where the decimal point of the last word of a line is, or would be. */
 static size_t point_of(const char *line)
 {
@@ -221,6 +252,7 @@ Suite *suite_report_table(void)
     TCase *t = tcase_create("table");
     tcase_add_checked_fixture(t, setup, teardown);
     tcase_add_test(t, a_small_table);
+    tcase_add_test(t, amounts_of_one_column);
     tcase_add_loop_test(t, numbers_align_on_the_point, 0, 12);
     tcase_add_test(t, the_least_columns_go_first);
     tcase_add_test(t, texts_wrap_and_lose_nothing);
