@@ -168,6 +168,7 @@ struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *l
     m->frequency = frequency;
     m->damage = damage;
     m->arrow_from = -1;
+    m->part_of = -1;
     return m;
 }
 

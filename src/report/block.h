@@ -71,13 +71,16 @@ struct column {
 
 struct row ARRAY_BODY(struct cell);
 
-/* A mark of the grid: a point with a label, and perhaps an arrow to another one. */
+/* A mark of the grid: a point with a label, and perhaps an arrow to another one. A part of
+ * another mark is drawn hollow, and only where it finds room for itself and its label beside
+ * the marks that are no parts; the key always has it. It has no arrow. */
 struct grid_mark {
     const char *label;   /* short, printed beside the mark */
     const char *name;    /* long, printed in the key below */
     double frequency;    /* per year, > 0 (0: listed in the key as never) */
     double damage;       /* money, > 0 (0: listed in the key as without damage) */
     int arrow_from;      /* index of the mark that it starts from, -1: none */
+    int part_of;         /* index of a mark before it that it is a part of, -1: none */
     const char *frequency_figure, *damage_figure;
 };
 
@@ -89,6 +92,8 @@ struct grid_line {
 
 struct grid {
     const char *currency;
+    /* What a mark is, and what a part of one is, in words for the key; NULL: just that. */
+    const char *wholes, *parts;
     ARRAY(struct grid_mark) marks;
     ARRAY(struct grid_line) lines;
 };
@@ -179,7 +184,8 @@ struct row *block_pair(struct report *r, struct block *b, const char *name);
 struct cell *pair_number(struct report *r, struct row *row, double number, const char *unit,
                          enum number_style style, const char *figure);
 
-/* A mark (without an arrow and figures: set them in the result) and a line of a grid. */
+/* A mark (a whole one, without an arrow and figures: set them in the result) and a line of a
+ * grid. */
 struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *label,
                                 const char *name, double frequency, double damage);
 struct grid_line *grid_add_line(struct report *r, struct block *b, const char *name, double risk,

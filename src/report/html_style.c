@@ -145,7 +145,8 @@ const char *const html_style[] = {
     "svg .arrow { stroke-width: 1.3; }\n"
     "svg .head { fill: var(--ink); stroke: none; }\n"
     "svg .disc { fill: var(--ink); stroke: var(--paper); stroke-width: 1.2; }\n"
-    "svg .ring { fill: var(--paper); stroke: var(--ink); stroke-width: 1.8; }\n",
+    "svg .ring { fill: var(--paper); stroke: var(--ink); stroke-width: 1.8; }\n"
+    "svg .part { fill: var(--paper); stroke: var(--ink); stroke-width: 1.2; }\n",
     /* wide and narrow pages, paper */
     "@media (min-width: 82rem) {\n"
     "  .long main { max-width: none; margin: 0; padding: 1rem 3rem 5rem 21rem; }\n"

@@ -196,6 +196,8 @@ static void put_mark(struct json *j, const struct grid *g, const struct grid_mar
     text_byte(j->out, '}');
     if (m->arrow_from >= 0)
         put_member(j, "from", g->marks.at[m->arrow_from].label, false);
+    if (m->part_of >= 0)
+        put_member(j, "part-of", g->marks.at[m->part_of].label, false);
     text_byte(j->out, '}');
 }
 
