@@ -15,7 +15,15 @@
 #include "base/error.h"
 #include "base/text.h"
 
-enum block_type { BLOCK_HEADING, BLOCK_NOTE, BLOCK_PAIRS, BLOCK_TABLE, BLOCK_GRID, BLOCK_CURVE };
+enum block_type {
+    BLOCK_HEADING,
+    BLOCK_NOTE,
+    BLOCK_PAIRS,
+    BLOCK_TABLE,
+    BLOCK_GRID,
+    BLOCK_CURVE,
+    BLOCK_SIGNATURES
+};
 
 enum cell_type {
     CELL_EMPTY,
@@ -141,7 +149,9 @@ struct block {
     int level;           /* headings: 1, 2, 3 */
     const char *text;    /* BLOCK_NOTE: a paragraph, filled to the width; lines that begin with
                             two blanks are kept as they are */
-    ARRAY(struct column) columns; /* BLOCK_TABLE; BLOCK_PAIRS has two: name, value */
+    ARRAY(struct column)
+    columns; /* BLOCK_TABLE; BLOCK_PAIRS has two: name, value;
+                                     BLOCK_SIGNATURES three: role, name, date */
     ARRAY(struct row) rows;
     bool entries;        /* BLOCK_TABLE: in text each row is an entry: a line of the columns that
                             may never be dropped, and below it, indented, the others from keep 4
@@ -166,6 +176,11 @@ struct block *report_grid(struct report *r, const char *key, const char *title,
                           const char *currency);
 /* Both axes are plain and linear, without key, head and unit, until they are set. */
 struct block *report_curve(struct report *r, const char *key, const char *title);
+
+/* Lines to be signed on paper: for each of the n roles ("Checked") one for a name and one for a
+ * date. JSON and CSV have a row for each, its name and date empty. */
+struct block *report_signatures(struct report *r, const char *key, const char *title,
+                                const char *const *roles, size_t n);
 
 /* Adds a column to a table; returns it, for `right` and `keep`. Pointers into a
  * block are valid until the next addition to the same array. */

@@ -174,6 +174,7 @@ static bool has_points(const struct curve *c)
 static bool is_table(const struct block *b)
 {
     switch (b->type) {
+    case BLOCK_SIGNATURES: return b->rows.n > 0;
     case BLOCK_TABLE: return b->columns.n > 0;
     case BLOCK_GRID: return b->grid->marks.n > 0;
     case BLOCK_CURVE: return has_points(b->curve);

@@ -62,6 +62,47 @@ static const char *entry_words(struct job *j, const struct store_entry *x)
                         utc_write(utc, x->utc), x->author);
 }
 
+/* "2 hazards", "1 hazard"; nothing for none. */
+static void add_number(struct text *t, size_t n, const char *what)
+{
+    if (n)
+        text_printf(t, "%s%zu %s%s", t->n ? ", " : "", n, what, n > 1 ? "s" : "");
+}
+
+static size_t count_left_out(const struct job *j, enum kind kind)
+{
+    size_t n = 0;
+    const struct objects *all = &j->model->of[kind];
+    for (size_t i = 0; i < j->not_computed.n; i++)
+        for (size_t k = 0; k < all->n; k++)
+            n += text_equal(all->at[k]->id, j->not_computed.at[i].id);
+    return n;
+}
+
+/* What the figures leave out: who signs them must know. */
+static const char *not_included(struct job *j)
+{
+    struct unused u = {0};
+    struct text t;
+    text_init(&t, j->arena);
+    figures_unused(j->arena, j->model, &u);
+    add_number(&t, count_left_out(j, KIND_HAZARD), "hazard");
+    add_number(&t, count_left_out(j, KIND_DECISION), "decision");
+    if (t.n)
+        text_add(&t, " without figures");
+    if (u.n)
+        text_printf(&t,
+                    "%sfields of %zu object%s that are stored, but not used (see the last chapter)",
+                    t.n ? "; " : "", u.n, u.n > 1 ? "s" : "");
+    return t.n ? text_str(&t) : "nothing";
+}
+
+void part_signatures(struct job *j)
+{
+    static const char *const roles[] = {"Prepared", "Checked", "Approved"};
+    report_signatures(j->report, "signatures", NULL, roles, sizeof roles / sizeof *roles);
+}
+
 void part_title_block(struct job *j, ohmen_error *e)
 {
     const struct register_settings *s = j->model->settings;
@@ -87,6 +128,7 @@ void part_title_block(struct job *j, ohmen_error *e)
                       date_write(date, horizon_start(s))));
     if (j->query.site)
         pair(j, b, "Only site", j->query.site);
+    pair(j, b, "Not included", not_included(j));
 }
 
 /* --- hazards --- */

@@ -33,6 +33,8 @@ static void add_summary(struct report *r)
     pair_number(r, block_pair(r, b, "Frequency of a busbar fault"), 2.94e-3, "1/a",
                 STYLE_FREQUENCY, "H-BUS1.frequency");
     pair_number(r, block_pair(r, b, "Failure on demand"), 0.0123, "", STYLE_PERCENT, "p");
+    static const char *const roles[] = {"Prepared", "Checked", "Approved by the head of grids"};
+    report_signatures(r, "signatures", "Signatures", roles, 3);
     report_note(r, "intro", "The figures rest on faults and tests up to the date of data. A rate "
                             "that was learnt from two faults in nine years is not a number but a "
                             "distribution.\n\n  ! : above the criterion, café included\n");
