@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Tables, entries, named values and lines to be signed as HTML. A number stands in its cell as two spans, what
- * is left of the point and the rest; the rest is as wide in every row (class w1, w2 ...: so
- * many digits), so that points stand below each other. Owns nothing.
+/* Tables, entries, named values and lines to be signed as HTML. A number stands in its cell as
+ * two spans, what is left of the point and the rest; the rest is as wide in every row (class
+ * w1, w2 ...: so many digits), so that points stand below each other. Owns nothing.
  * Invariant: every cell of the block is on the page, as the text writer would show it on a
  * page wide enough. */
 #include <assert.h>
