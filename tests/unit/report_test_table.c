@@ -133,7 +133,7 @@ static const struct {
     {"\033[31m", 8},      /* \x1b[31m */
     {"\xc2\x9b"
      "1",
-     5},           /* \u{009b}1 */
+     9},           /* \u{009b}1 */
     {"\t=1+1", 8}, /* \x09=1+1 */
     {"\xff", 1},   /* the sign for what is no UTF-8 */
 };
