@@ -4,7 +4,7 @@
 
 #include "work/work.h"
 
-const struct flow *job_flow(struct job *j, struct weighing *w, const struct alternative *x)
+static const struct flow *job_flow(struct job *j, struct weighing *w, const struct alternative *x)
 {
     const struct flow *flow = NULL;
     ohmen_status status = flow_compile(j->figures, w, x, &flow, NULL);

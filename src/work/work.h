@@ -115,7 +115,9 @@ const char *unit_per_year(struct job *j);        /* "EUR/a" */
 /* Whose damage counts: "every category", "what society bears". */
 const char *perspective_words(struct job *j);
 
+/* Behind the figures, for it says what is not among them. */
 void part_title_block(struct job *j, ohmen_error *e);
+void part_signatures(struct job *j);
 void part_hazards(struct job *j, const struct hazards *h);
 void part_hazard_grid(struct job *j, const struct hazards *h);
 /* What is left out because it cannot be evaluated, and why; nothing when all could. */
