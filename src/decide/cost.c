@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Figures of options: investments with their renewals, running cost, what they are worth at the end,
- * and the present value of all. Owns nothing. */
+/* Figures of options: investments with their renewals, running cost, what they are worth at the
+ * end, and the present value of all. Owns nothing. */
 #include "decide/cost.h"
 
 #include <math.h>

@@ -205,8 +205,9 @@ static bool has_pair_left_out(struct figures *f, const struct weighing *w,
     return false;
 }
 
-/* Makes the variants, and cuts the horizon. Options that are right alone may leave the register wrong
- * together, such as two that add a row of the same clearance time: then they are no alternative. */
+/* Makes the variants, and cuts the horizon. Options that are right alone may leave the register
+ * wrong together, such as two that add a row of the same clearance time: then they are no
+ * alternative. */
 static ohmen_status find_variants(struct figures *f, struct weighing *w,
                                   struct stretches *stretches, ohmen_error *e)
 {

@@ -148,7 +148,7 @@ struct span {
     bool yearly;             /* windows are years of the horizon */
     uint32_t years;          /* of the horizon */
     const uint32_t *of_year; /* yearly: the window that holds in each */
-    double from; /* yearly: what there was not before; its year is a window from there */
+    double from;             /* yearly: the beginning; its year is a window from there */
 };
 
 /* What an element shows to common causes and to the report. */

@@ -295,6 +295,7 @@ static void part_sign(struct memo *m)
     report_note(m->j->report, "to-sign",
                 "To be signed by who prepared it, by who checked it, and, as the decision, by %s.",
                 owner ? owner : "its owner, whom the register does not name");
+    part_signatures(m->j);
 }
 
 /* --- the memo --- */
