@@ -5,6 +5,8 @@
 
 #include <math.h>
 
+#include "model/supplied.h"
+
 /* IEEE 1366-2012: an interruption longer than this is sustained, where the register says
  * nothing else. */
 static const double FIVE_MINUTES = 5.0 / 525600;
@@ -40,16 +42,39 @@ static node_id **row_times(struct counting *c)
     return all;
 }
 
+/* A figure of the site that supplies those whom the hazard interrupts; NODE_NONE: not stated. */
+static node_id of_site(const struct counting *c, enum property p)
+{
+    const struct object *site = model_supplied(c->b.variant->model, c->data->site);
+    figure_id id = compiled_figure(c->f, compiled_of(&c->b, site->id), p, NULL, NULL);
+    return id == FIGURE_NONE ? NODE_NONE : counting_node(c, id);
+}
+
+static node_id row_load(struct counting *c, const struct interruption *row)
+{
+    if (interruption_is_whole(row))
+        return of_site(c, PROPERTY_LOAD);
+    return row->load ? compile_quantity(&c->b, row->load) : NODE_NONE;
+}
+
+static node_id row_customers(struct counting *c, const struct interruption *row)
+{
+    if (interruption_is_whole(row))
+        return of_site(c, PROPERTY_CUSTOMERS);
+    return row->customers > 0 ? counting_number(c, row->customers) : NODE_NONE;
+}
+
 /* What a row counts for in one of the four sums; NODE_NONE: nothing. */
 static node_id row_amount(struct counting *c, enum property p, const struct interruption *row,
                           node_id lasts)
 {
-    if (p == PROPERTY_NOT_SUPPLIED)
-        return row->load ? counting_product(c, compile_quantity(&c->b, row->load), lasts)
-                         : NODE_NONE;
-    if (row->customers <= 0)
-        return NODE_NONE;
-    node_id customers = counting_number(c, row->customers);
+    if (p == PROPERTY_NOT_SUPPLIED) {
+        node_id load = row_load(c, row);
+        return load == NODE_NONE ? load : counting_product(c, load, lasts);
+    }
+    node_id customers = row_customers(c, row);
+    if (customers == NODE_NONE)
+        return customers;
     if (p == PROPERTY_CUSTOMER_TIME)
         return if_sustained(c, lasts, counting_product(c, customers, lasts), true);
     return if_sustained(c, lasts, customers, p == PROPERTY_INTERRUPTIONS);
