@@ -10,7 +10,7 @@ static const struct consequence_exports *exports_in(const struct counting *c, si
     return u ? compiled_part(&under, u->id, PART_CONSEQUENCES)->exports : NULL;
 }
 
-static struct dim effect_dim(enum property p)
+struct dim effect_dim(enum property p)
 {
     if (p == PROPERTY_BORNE || p == PROPERTY_CATEGORY)
         return dim_money_rate;

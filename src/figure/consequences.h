@@ -39,6 +39,10 @@ struct harm_to {
     const char *group;
     figure_id death, injury; /* of a given person, per year */
     figure_id fatalities;    /* deaths in the group, per year */
+    /* Of a group over all hazards: of death, by year of the horizon, yearly[y]; of_year[y] is the
+     * first year that is like y. NULL: yearly[0] in all. Of one hazard: NULL both. */
+    const figure_id *yearly;
+    const uint32_t *of_year;
 };
 struct consequence_exports {
     size_t n;

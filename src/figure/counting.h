@@ -55,6 +55,7 @@ struct consequence *counting_add(struct counting *c, enum property p, const char
                                  const struct amount *all, struct dim d, bool yearly);
 /* Is it counted in one year, without "per year" in its unit? */
 bool effect_is_of_a_year(enum property p);
+struct dim effect_dim(enum property p);
 const struct consequence *effect_find(size_t n, const struct consequence *all, enum property p,
                                       const char *of);
 
