@@ -43,9 +43,25 @@ static struct exposed exposed_of(struct counting *c, const char *group)
     return x;
 }
 
+/* Each outcome in which somebody may die: individual-risk.GROUP.OUTCOME. */
+static void add_deaths_of_outcomes(struct counting *c, const char *group,
+                                   const struct amount *death)
+{
+    for (size_t k = 0; k < c->data->outcomes.n; k++) {
+        struct amount *one = counting_amounts(c);
+        if (death[k].whole == NODE_NONE)
+            continue;
+        one[k] = death[k];
+        counting_add(c, PROPERTY_DEATH,
+                     arena_printf(c->f->arena, "%s.%s", group, c->data->outcomes.keys[k]), one,
+                     dim_number, false);
+    }
+}
+
 static struct harm_to add_harm(struct counting *c, const char *group)
 {
     struct exposed x = exposed_of(c, group);
+    add_deaths_of_outcomes(c, group, x.death);
     return (struct harm_to){
         .group = group,
         .death = counting_add(c, PROPERTY_DEATH, group, x.death, dim_number, true)->mean,

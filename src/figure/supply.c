@@ -138,17 +138,23 @@ static figure_id *add_borne(struct building *b, const struct over *o)
     return ids;
 }
 
+static struct accounts add_accounts(struct building *b, const struct over *o)
+{
+    struct accounts x = {.borne = add_borne(b, o)};
+    x.n_categories = find_categories(o, &x.categories);
+    figure_id *ids = NEW_ARRAY(o->f->arena, x.n_categories, figure_id);
+    for (size_t i = 0; i < x.n_categories; i++)
+        ids[i] = over_add(b, o, PROPERTY_CATEGORY, x.categories[i]);
+    x.by_category = ids;
+    return x;
+}
+
 static const struct compiled *compile_accounts(const struct over *o)
 {
     struct accounts *x = NEW(o->f->arena, struct accounts);
     struct building b;
     begin_register(&b, o, PART_ACCOUNTS);
-    x->borne = add_borne(&b, o);
-    x->n_categories = find_categories(o, &x->categories);
-    figure_id *ids = NEW_ARRAY(o->f->arena, x->n_categories, figure_id);
-    for (size_t i = 0; i < x->n_categories; i++)
-        ids[i] = over_add(&b, o, PROPERTY_CATEGORY, x->categories[i]);
-    x->by_category = ids;
+    *x = add_accounts(&b, o);
     b.unit->exports = x;
     b.unit->main = FIGURE_NONE;
     compiled_end(&b);
@@ -214,7 +220,7 @@ static const struct compiled *compile_at_site(const struct over *all, const stru
     compiled_begin_part(all->f, all->base, site, site->id, PART_SITE, &b);
     x->n_hazards = at.n;
     x->risk = add_risk(&b, &at);
-    x->borne = add_borne(&b, &at);
+    x->accounts = add_accounts(&b, &at);
     x->supply = add_supply(&b, &at);
     b.unit->exports = x;
     b.unit->main = x->risk;

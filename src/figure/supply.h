@@ -40,7 +40,7 @@ ohmen_status figures_accounts(struct figures *f, size_t n, const struct compiled
 struct site_sums {
     size_t n_hazards;
     figure_id risk;
-    const figure_id *borne; /* as the keys of the register's perspectives */
+    struct accounts accounts;
     struct supply supply;
 };
 ohmen_status figures_site(struct figures *f, const struct object *site, size_t n,

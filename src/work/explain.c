@@ -59,7 +59,7 @@ static const char *value_words(struct job *j, figure_id id, double value)
     shown = whole == 0 ? value : value * (shown / whole);
     if (text_starts(unit, j->model->settings->currency))
         return money_text(j->arena, shown, unit);
-    number_text(number, shown, STYLE_PLAIN);
+    number_text(number, shown, figure_style(j, id));
     return arena_printf(j->arena, "%s%s%s", number, *unit ? " " : "", unit);
 }
 

@@ -8,6 +8,7 @@
 #define WORK_WORK_H
 
 #include "decide/weigh.h"
+#include "figure/supply.h"
 #include "ohmen/ohmen.h"
 #include "report/block.h"
 #include "store/store.h"
@@ -116,16 +117,12 @@ void part_weighing_grid(struct job *j, struct weighing *w);
 /* One sentence: what is best, and what it is worth. */
 const char *weighing_sentence(struct job *j, const struct weighing *w);
 
-/* Criteria lines of the register for a grid; only those whose scope is a hazard. */
-void part_criteria_lines(struct job *j, struct block *grid);
-
-/* The place of a hazard's risk among the criteria: "acceptable", "tolerable",
- * "intolerable", or "" without criteria. */
-const char *criteria_word(struct job *j, double risk);
-
 /* A value in a unit that people read: s, min, h or a for times, kWh for energy; otherwise
  * base units. Returns the unit's name. */
 const char *display_unit(struct job *j, struct dim d, double value, double *shown);
+
+/* How its value is printed in that unit. */
+enum number_style figure_style(struct job *j, figure_id id);
 
 /* The same for a figure: a stated quantity is shown in the unit that its author used. */
 const char *figure_display(struct job *j, figure_id id, double *shown);
@@ -133,6 +130,64 @@ const char *figure_display(struct job *j, figure_id id, double *shown);
 /* Where a figure comes from: its source, that of the figure that it merely repeats, "none" for
  * a leaf without one, "" for a formula. */
 const char *figure_source(struct job *j, figure_id id);
+
+/* Indices of values by falling value; ties in their order. */
+size_t *falling_order(struct arena *a, size_t n, const double *values);
+/* Hazards by falling risk; ties by id. */
+size_t *hazards_by_risk(struct job *j, const struct hazards *h);
+/* A cell with a figure in base units. */
+void figure_cell(struct job *j, struct row *row, figure_id id);
+/* An effect of a hazard over the horizon, whose effects have been compiled; FIGURE_NONE. */
+figure_id hazard_effect(struct job *j, const struct compiled *hazard, enum property p,
+                        const char *of);
+
+/* --- criteria (criteria.c) --- */
+
+/* Criteria lines of the register for a grid; only those whose scope is a hazard. */
+void part_criteria_lines(struct job *j, struct block *grid);
+/* The place of a risk of a hazard, of a site or of the register among the criteria:
+ * "acceptable", "tolerable", "intolerable"; "" without criteria of this scope. */
+const char *criteria_word(const struct job *j, enum scope scope, double risk);
+/* " By the register's criteria that is tolerable (acceptable below ...).", or "". */
+const char *criteria_sentence(struct job *j, enum scope scope, double risk);
+/* The same for an individual risk, and the limits in words; "" without limits. */
+const char *people_word(const struct job *j, double individual_risk);
+const char *people_limit_words(struct job *j);
+
+/* --- perspectives.c, supply.c, people.c: compile, figures_evaluate, then the parts --- */
+
+struct perspectives {
+    const struct hazards *hazards;
+    struct accounts sums; /* of the register, or of the site that is asked for */
+};
+ohmen_status perspectives_compile(struct job *j, const struct hazards *h, struct perspectives *p,
+                                  ohmen_error *e);
+/* Risk by perspective and by category of damage, as tables. */
+void part_perspectives(struct job *j, const struct perspectives *p);
+
+struct site_row {
+    const struct object *site;
+    struct site_sums sums;
+};
+struct supply_part {
+    const struct hazards *hazards;
+    bool any;           /* does some hazard interrupt somebody? */
+    struct supply sums; /* of the register, or of the site that is asked for */
+    ARRAY(struct site_row) sites; /* that have hazards */
+};
+ohmen_status supply_compile(struct job *j, const struct hazards *h, struct supply_part *s,
+                            ohmen_error *e);
+void part_supply(struct job *j, const struct supply_part *s);
+void part_sites(struct job *j, const struct supply_part *s);
+
+struct people_part {
+    const struct hazards *hazards; /* all of the register */
+    bool any;                      /* does some hazard harm somebody? */
+    struct harm_to *groups;        /* as the groups of the model */
+};
+ohmen_status people_compile(struct job *j, const struct hazards *h, struct people_part *p,
+                            ohmen_error *e);
+void part_people(struct job *j, const struct people_part *p);
 
 /* --- what objects say (nodes.c) --- */
 
