@@ -28,8 +28,8 @@ static void compile_plain(struct figures *f, const struct compiled *hazard)
     struct counting c;
     begin(&c, f, hazard);
     counting_slots(&c);
-    count_perspectives(&c);
     count_categories(&c);
+    count_perspectives(&c);
     count_interruptions(&c, x);
     count_harm(&c, x);
     finish(&c, x);
