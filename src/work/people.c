@@ -206,6 +206,19 @@ static void part_contributions(struct job *j, const struct people_part *p)
 
 /* --- the chapter --- */
 
+/* What is not stated counts as nothing: the reader must know how much that is. */
+static void part_silent(struct job *j, const struct people_part *p)
+{
+    size_t silent = 0;
+    for (size_t i = 0; i < p->hazards->n; i++)
+        silent += !harms(p->hazards->at[i]);
+    if (silent)
+        report_note(j->report, "people-silent",
+                    "No harm is stated of %zu of %s; %s as harming nobody.", silent,
+                    count_words(j->arena, p->hazards->n, "hazard", "hazards"),
+                    silent == 1 ? "it counts" : "they count");
+}
+
 void part_people(struct job *j, const struct people_part *p)
 {
     if (!p->any) {
@@ -215,6 +228,7 @@ void part_people(struct job *j, const struct people_part *p)
     part_groups(j, p);
     part_limits(j);
     part_contributions(j, p);
+    part_silent(j, p);
     report_note(j->report, "people-cautions",
                 "How often people are present is stated in the register, not measured. These "
                 "figures replace no duty of care: local codes and licensed practice come first.");

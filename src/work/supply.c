@@ -213,9 +213,10 @@ static void part_hazards_that_interrupt(struct job *j, const struct supply_part 
     for (size_t i = 0; i < shown; i++)
         hazard_row(j, b, h.at[order[i]]);
     if (h.n > shown)
-        report_note(r, "interruptions-more", "%s more, with less %s, %s not shown.",
+        report_note(r, "interruptions-more", "%s more, with %s, %s not shown.",
                     count_words(j->arena, h.n - shown, "hazard", "hazards"),
-                    customers ? "customer hours" : "energy", h.n - shown == 1 ? "is" : "are");
+                    customers ? "fewer customer hours" : "less energy",
+                    h.n - shown == 1 ? "is" : "are");
 }
 
 /* --- sites --- */
@@ -274,6 +275,17 @@ void part_sites(struct job *j, const struct supply_part *s)
 
 /* --- the chapter --- */
 
+/* What is not stated counts as nothing: the reader must know how much that is. */
+static void part_silent(struct job *j, const struct supply_part *s)
+{
+    size_t silent = s->hazards->n - interrupting(j, s->hazards).n;
+    if (silent)
+        report_note(j->report, "supply-silent",
+                    "No interruption is stated of %zu of %s here; %s as interrupting nobody.",
+                    silent, count_words(j->arena, s->hazards->n, "hazard", "hazards"),
+                    silent == 1 ? "it counts" : "they count");
+}
+
 void part_supply(struct job *j, const struct supply_part *s)
 {
     if (!s->any) {
@@ -282,6 +294,7 @@ void part_supply(struct job *j, const struct supply_part *s)
     }
     part_indices(j, s);
     part_hazards_that_interrupt(j, s);
+    part_silent(j, s);
 }
 
 static ohmen_status run_supply(struct job *j, void *ctx, ohmen_error *e)
