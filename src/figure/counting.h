@@ -61,7 +61,8 @@ const struct consequence *effect_find(size_t n, const struct consequence *all, e
 
 /* --- what is counted --- */
 
-/* Risk by perspective, and by category (consequence_damage.c): categories come first, so that formulas name them. */
+/* Risk by perspective, and by category (consequence_damage.c). Categories come first, so that
+ * formulas name them. */
 void count_perspectives(struct counting *c);
 void count_categories(struct counting *c);
 /* What the chosen perspective bears is the risk of the hazard itself. */

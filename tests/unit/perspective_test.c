@@ -46,7 +46,9 @@ static void add_head(struct drawn *d)
                        "nobody: [other]}\n"
                        "sites: {TOP: {name: Top}, LOW: {name: Low, in: TOP}}\nelements:\n");
     for (int i = 0; i < 4; i++)
-        text_printf(&d->text, "  E%d: {undetected: %.4f per a, test: {every: %d a, last: 202%d-05-17}}\n",
+        text_printf(&d->text,
+                    "  E%d: {undetected: %.4f per a, test: {every: %d a, "
+                    "last: 202%d-05-17}}\n",
                     i, random_log_uniform(&d->r, 1e-3, 0.3), (int)random_range(&d->r, 1, 4),
                     (int)random_range(&d->r, 2, 6));
     text_add(&d->text, "schemes: {MAIN: {all: [E0, E1]}, BACK: {any: [E2, E3]}}\n");
