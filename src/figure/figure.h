@@ -66,6 +66,8 @@
       "damaging outcomes")                                                                         \
     X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
     X(RISK, "risk", "frequency times damage, of an outcome or a hazard")                           \
+    X(CUSTOMERS, "customers", "customers supplied from a site")                                    \
+    X(LOAD, "load", "load supplied from a site")                                                   \
     X(INTERRUPTIONS, "interruptions", "customers interrupted in a year, for long (IEEE 1366)")     \
     X(MOMENTARY, "momentary-interruptions", "customers interrupted in a year, for a short time")   \
     X(CUSTOMER_TIME, "customer-time", "time without supply in a year, summed over customers")      \

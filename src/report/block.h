@@ -54,6 +54,9 @@ enum number_style {
     STYLE_PERCENT,     /* the value 0.123 printed as 12.3 under the unit %; 99.99 as it is. JSON
                           and CSV have the pure number 0.123, without a unit */
     STYLE_RATIO,       /* 1.23 */
+    STYLE_GROUPED,     /* as PLAIN, but without an exponent from 1e5 on, and in groups of three
+                          digits: 12 300, 1 230 000; from 0.99 to 1 with three digits of what is
+                          missing to 1, and six decimals: 0.999795 */
     STYLE_YEAR         /* a year and its part, with at most two decimals: 2027, 2031.25 */
 };
 

@@ -14,8 +14,13 @@ enum {
     USUAL_DIGITS = 3,
     MOST_DIGITS = 12, /* a number that is the same to so many has no error of rounding */
     YEAR_DECIMALS = 2,
+    NEAR_ONE_DECIMALS = 6,
+    GROUP = 3,
     DIGITS_BEFORE_POINT = 4 /* of an amount of money: a lower prefix is not worth more */
 };
+
+/* From here to 1 it matters how much is missing. */
+static const double NEAR_ONE = 0.99;
 
 /* |x| = d.ddd * 10^exponent, of n digits. */
 struct decimal {
@@ -53,6 +58,13 @@ static struct decimal decimal_of_year(double x)
     return decimal_of(x, between(before + YEAR_DECIMALS, 1, MOST_DIGITS));
 }
 
+/* Three digits of what is missing to 1. */
+static struct decimal decimal_near_one(double x)
+{
+    int missing = USUAL_DIGITS - 1 - decimal_of(1 - x, USUAL_DIGITS).exponent;
+    return decimal_of(x, between(missing, NEAR_ONE_DECIMALS, MOST_DIGITS));
+}
+
 /* Whether the digits of d, zeros at its end left out, are all that x has. */
 static bool is_exact(const struct decimal *d, double x)
 {
@@ -65,6 +77,8 @@ static struct decimal decimal_in_style(double x, enum number_style style)
 {
     if (style == STYLE_YEAR)
         return decimal_of_year(x);
+    if (style == STYLE_GROUPED && x >= NEAR_ONE && x < 1)
+        return decimal_near_one(x);
     int n = USUAL_DIGITS;
     struct decimal d = decimal_of(x, n);
     bool chance = style == STYLE_PROBABILITY || style == STYLE_PERCENT;
@@ -79,7 +93,9 @@ static struct decimal decimal_in_style(double x, enum number_style style)
 static bool is_fixed(int exponent, enum number_style style)
 {
     int low = style == STYLE_FREQUENCY ? -1 : style == STYLE_MONEY ? -3 : -2;
-    int high = style == STYLE_MONEY || style == STYLE_YEAR ? 9 : 5;
+    int high = style == STYLE_GROUPED                        ? MOST_DIGITS
+               : style == STYLE_MONEY || style == STYLE_YEAR ? 9
+                                                             : 5;
     return exponent >= low && exponent < high;
 }
 
@@ -101,6 +117,17 @@ static char *put_fixed(char *to, const struct decimal *d)
         to = put_digits(to, d, d->exponent + 1, d->n);
     }
     return to;
+}
+
+/* Blanks between groups of three digits before the point; `text` has room for them. */
+static void group_digits(char *text)
+{
+    size_t n = strspn(text, "0123456789");
+    for (size_t i = n; i > GROUP; i -= GROUP) {
+        char *rest = text + i - GROUP;
+        memmove(rest + 1, rest, strlen(rest) + 1);
+        *rest = ' ';
+    }
 }
 
 static char *put_scientific(char *to, const struct decimal *d)
@@ -125,8 +152,11 @@ char *number_scaled(char *buf, double x, enum number_style style, int shift)
     char *to = buf;
     if (x < 0)
         *to++ = '-';
+    char *from = to;
     to = is_fixed(d.exponent, style) ? put_fixed(to, &d) : put_scientific(to, &d);
     *to = 0;
+    if (style == STYLE_GROUPED)
+        group_digits(from);
     return buf;
 }
 

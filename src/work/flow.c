@@ -13,11 +13,6 @@ static const struct flow *job_flow(struct job *j, struct weighing *w, const stru
     return status == OHMEN_OK ? flow : NULL;
 }
 
-static void figure_cell(struct job *j, struct row *row, figure_id id)
-{
-    row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
-}
-
 void part_flow(struct job *j, struct weighing *w)
 {
     const struct alternative *best = &w->alternatives.at[w->order[0]];

@@ -144,47 +144,54 @@ static double risk_of(const struct job *j, const struct compiled *c)
 }
 
 struct ranked {
-    double risk;
+    double value;
     size_t index;
 };
 
-static int by_falling_risk(const void *p, const void *q)
+static int by_falling_value(const void *p, const void *q)
 {
     const struct ranked *a = p, *b = q;
-    if (a->risk != b->risk)
-        return a->risk > b->risk ? -1 : 1;
+    if (a->value != b->value)
+        return a->value > b->value ? -1 : 1;
     return (a->index > b->index) - (a->index < b->index);
 }
 
-/* Indices of hazards by falling risk; ties by id, since hazards come in that order. */
-static size_t *by_risk(struct job *j, const struct hazards *h)
+size_t *falling_order(struct arena *a, size_t n, const double *values)
 {
-    size_t *order = NEW_ARRAY(j->arena, h->n, size_t);
-    struct ranked *ranked = NEW_ARRAY(j->arena, h->n, struct ranked);
-    for (size_t i = 0; i < h->n; i++)
-        ranked[i] = (struct ranked){risk_of(j, h->at[i]), i};
-    if (h->n > 1)
-        qsort(ranked, h->n, sizeof *ranked, by_falling_risk);
-    for (size_t i = 0; i < h->n; i++)
+    size_t *order = NEW_ARRAY(a, n, size_t);
+    struct ranked *ranked = NEW_ARRAY(a, n, struct ranked);
+    for (size_t i = 0; i < n; i++)
+        ranked[i] = (struct ranked){values[i], i};
+    if (n > 1)
+        qsort(ranked, n, sizeof *ranked, by_falling_value);
+    for (size_t i = 0; i < n; i++)
         order[i] = ranked[i].index;
     return order;
 }
 
-const char *criteria_word(struct job *j, double risk)
+size_t *hazards_by_risk(struct job *j, const struct hazards *h)
 {
-    const struct criteria *c = j->model->settings->criteria;
-    if (!c || !c->money || !text_equal(scope_words[c->money->scope], "hazard"))
-        return "";
-    const struct quantity *low = c->money->acceptable_below, *high = c->money->intolerable_above;
-    if (high && risk > expr_constant(high->expr))
-        return "intolerable";
-    if (low && risk < expr_constant(low->expr))
-        return "acceptable";
-    return "tolerable";
+    double *risks = NEW_ARRAY(j->arena, h->n, double);
+    for (size_t i = 0; i < h->n; i++)
+        risks[i] = risk_of(j, h->at[i]);
+    return falling_order(j->arena, h->n, risks);
 }
 
-static void number_cell(struct job *j, struct row *row, figure_id id)
+figure_id hazard_effect(struct job *j, const struct compiled *hazard, enum property p,
+                        const char *of)
 {
+    const struct compiled *part = NULL;
+    figures_consequences(j->figures, hazard->variant, hazard->id, &part, NULL);
+    const struct consequence *x = part ? consequence_of(part, p, of) : NULL;
+    return x ? x->mean : FIGURE_NONE;
+}
+
+void figure_cell(struct job *j, struct row *row, figure_id id)
+{
+    if (id == FIGURE_NONE) {
+        row_empty(j->report, row);
+        return;
+    }
     row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
 }
 
@@ -195,12 +202,12 @@ static struct row *hazard_row(struct job *j, struct block *b, size_t rank, const
     row_count(j->report, row, rank);
     row_text(j->report, row, c->id);
     row_text(j->report, row, object_name(c->object));
-    number_cell(j, row, x->frequency);
-    number_cell(j, row, x->damaging);
-    number_cell(j, row, x->damage);
-    number_cell(j, row, x->risk);
-    if (*criteria_word(j, 0))
-        row_text(j->report, row, criteria_word(j, risk_of(j, c)));
+    figure_cell(j, row, x->frequency);
+    figure_cell(j, row, x->damaging);
+    figure_cell(j, row, x->damage);
+    figure_cell(j, row, x->risk);
+    if (*criteria_word(j, SCOPE_HAZARD, 0))
+        row_text(j->report, row, criteria_word(j, SCOPE_HAZARD, risk_of(j, c)));
     return row;
 }
 
@@ -230,7 +237,7 @@ static struct filter_item hazard_item(struct job *j, const struct compiled *c, s
     v[HAZARD_RANK] = computed_number((double)(index + 1), NUMBER);
     for (size_t i = HAZARD_FREQUENCY; i <= HAZARD_RISK; i++)
         v[i] = computed_number(figure_value(j->figures, of[i]), hazard_columns[i].dim);
-    const char *word = criteria_word(j, v[HAZARD_RISK].value);
+    const char *word = criteria_word(j, SCOPE_HAZARD, v[HAZARD_RISK].value);
     v[HAZARD_CRITERION] = (struct filter_value){.given = *word != 0, .text = word};
     return (struct filter_item){.object = c->object, .computed = v, .index = index};
 }
@@ -247,7 +254,7 @@ static struct block *hazards_table(struct job *j, const char *title)
     block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 4;
     block_column(r, b, "damage", "Mean damage", currency, STYLE_MONEY)->keep = 4;
     block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
-    if (*criteria_word(j, 0))
+    if (*criteria_word(j, SCOPE_HAZARD, 0))
         block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 2;
     return b;
 }
@@ -280,7 +287,7 @@ void part_hazards_where(struct job *j, const struct hazards *h, struct filter *f
     bool by_another = f && filter_orders(f);
     struct block *b = hazards_table(j, by_another ? "Hazards" : "Hazards by risk");
     asked_columns(j, b, f);
-    size_t *order = by_risk(j, h);
+    size_t *order = hazards_by_risk(j, h);
     for (size_t i = 0; i < h->n; i++)
         *array_push(j->arena, &items) = hazard_item(j, h->at[order[i]], i);
     if (f)
@@ -296,21 +303,6 @@ void part_hazards_where(struct job *j, const struct hazards *h, struct filter *f
 void part_hazards(struct job *j, const struct hazards *h)
 {
     part_hazards_where(j, h, NULL);
-}
-
-void part_criteria_lines(struct job *j, struct block *grid)
-{
-    const struct criteria *c = j->model->settings->criteria;
-    if (!c || !c->money || !text_equal(scope_words[c->money->scope], "hazard"))
-        return;
-    const struct quantity *low = c->money->acceptable_below, *high = c->money->intolerable_above;
-    double x;
-    if (low && (x = expr_constant(low->expr)) > 0)
-        grid_add_line(j->report, grid,
-                      arena_printf(j->arena, "acceptable below %s", money_rate(j, x)), x, "a");
-    if (high && (x = expr_constant(high->expr)) > 0)
-        grid_add_line(j->report, grid,
-                      arena_printf(j->arena, "intolerable above %s", money_rate(j, x)), x, "i");
 }
 
 static struct grid_mark *add_mark(struct job *j, struct block *b, const char *label,
@@ -335,7 +327,7 @@ static struct ranked *outcomes_by_risk(struct job *j, const struct hazard_export
             all[(*n)++] = (struct ranked){risk, k};
     }
     if (*n > 1)
-        qsort(all, *n, sizeof *all, by_falling_risk);
+        qsort(all, *n, sizeof *all, by_falling_value);
     return all;
 }
 
@@ -357,7 +349,7 @@ static void add_outcomes(struct job *j, struct block *b, const struct compiled *
     struct ranked *by = outcomes_by_risk(j, x, &n);
     const char *rank = b->grid->marks.at[whole].label;
     double least = LEAST_SHARE_OF_RISK * risk_of(j, c);
-    for (size_t i = 0; n > 1 && i < n && by[i].risk >= least; i++) {
+    for (size_t i = 0; n > 1 && i < n && by[i].value >= least; i++) {
         size_t k = by[i].index;
         const char *label = arena_printf(j->arena, "%s%c", rank, (char)('a' + i));
         add_mark(j, b, label, outcome_words(j, c, k), x->frequency_of[k], x->damage_of[k])
@@ -372,7 +364,7 @@ void part_hazard_grid(struct job *j, const struct hazards *h)
     b->grid->wholes = "a hazard";
     b->grid->parts = "an outcome with at least 10 % of its hazard's risk";
     part_criteria_lines(j, b);
-    size_t *order = by_risk(j, h);
+    size_t *order = hazards_by_risk(j, h);
     for (size_t i = 0; i < h->n; i++) {
         const struct compiled *c = h->at[order[i]];
         const struct hazard_exports *x = exports(c);
