@@ -83,12 +83,30 @@ static struct stated last_stated(struct job *j, const char *text, struct dim d)
     return last;
 }
 
+/* Customer time, and what it costs, are told by the hour whatever their size. NULL: others. */
+static const char *by_the_hour(struct job *j, figure_id id, double *shown)
+{
+    double value = figure_value(j->figures, id);
+    switch (figure_at(j->figures, id)->property) {
+    case PROPERTY_CUSTOMER_TIME:
+    case PROPERTY_AVOIDS_TIME:
+    case PROPERTY_PRESENT_TIME: *shown = value * HOURS_PER_YEAR; return "h";
+    case PROPERTY_PER_HOUR:
+        *shown = value / HOURS_PER_YEAR;
+        return arena_printf(j->arena, "%s/h", j->model->settings->currency);
+    default: return NULL;
+    }
+}
+
 const char *figure_display(struct job *j, figure_id id, double *shown)
 {
     const struct figure *g = figure_at(j->figures, id);
     struct dim d = figure_dim(j->figures, id);
     double value = figure_value(j->figures, id);
     struct stated s = {0};
+    const char *hours = by_the_hour(j, id, shown);
+    if (hours)
+        return hours;
     if (g->text)
         s = last_stated(j, g->text, d);
     if (!s.unit) {
