@@ -74,9 +74,10 @@ static const char *without_variant(struct arena *a, const char *name)
     return at ? arena_strn(a, name, (size_t)(at - name)) : name;
 }
 
+/* Exports of a part are others. */
 static bool is_mean(const struct compiled *u)
 {
-    return u->object && u->object->kind == KIND_HAZARD &&
+    return u->object && u->object->kind == KIND_HAZARD && !u->part &&
            ((const struct hazard_exports *)u->exports)->n_states;
 }
 

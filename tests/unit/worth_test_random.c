@@ -10,7 +10,7 @@
 
 static struct {
     size_t alternatives, perspectives, worse_for_customers, better_for_customers, deaths;
-    size_t by_hour, by_life, no_life, together, individual, growing, states;
+    size_t by_hour, by_life, no_life, together, individual, in_states, growing, states;
 } met;
 
 static const double EXACT = 1e-12;
@@ -234,12 +234,22 @@ static void check_sums(struct arena *a, const struct node *root, const char *dec
 
 /* --- people --- */
 
+/* The merge leaves operating states out; these options touch none. */
+static void keep_states(struct arena *a, const struct model *base, struct model_sources *out)
+{
+    const struct objects *states = &base->of[KIND_STATE];
+    for (size_t i = 0; i < states->n; i++)
+        *array_push(a, out) =
+            (struct model_source){KIND_STATE, states->at[i]->id, states->at[i]->node};
+}
+
 static double risk_anew(const struct opened *x, const struct alternative *alt, const char *group)
 {
     struct model_sources sources = {0};
     struct loaded fresh;
     struct arena *a = arena_new(NULL);
     merge_options(a, x->loaded.model, alt->n, alt->options, &sources);
+    keep_states(a, x->loaded.model, &sources);
     loaded_objects(&fresh, a, &sources, "all");
     fresh.figures->points_only = true;
     double risk = loaded_value(&fresh, arena_printf(a, "%s.individual-risk", group));
@@ -258,6 +268,7 @@ static void check_people(struct arena *a, const struct node *root, const char *d
             double then = risk_anew(&x, alt, x.w->groups.at[g].id);
             near(&x, alt->individual[g], then, now + then, "risk of a person");
             met.individual += now != then;
+            met.in_states += now != then && x.loaded.model->of[KIND_STATE].n > 0;
         }
 }
 
@@ -302,6 +313,7 @@ START_TEST(people_anew)
 {
     each_decision(301, 330, check_people);
     ck_assert_uint_gt(met.individual, 50);
+    ck_assert_uint_gt(met.in_states, 10);
 }
 END_TEST
 
