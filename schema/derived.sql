@@ -42,6 +42,7 @@ CREATE TABLE "register"( -- The register itself: one in each file
     "discount" TEXT, -- Interest, such as 4 % per a
     "customers_served" INTEGER, -- Customers that the network serves
     "steady" INTEGER, -- Are figures long-run averages, instead of those of each year of the horizon?
+    "yearly_amounts" TEXT, -- When damage and running cost of a year count as paid; mid-year where it is left out
     "sustained_over" TEXT, -- Interruptions longer than this count as sustained (IEEE 1366)
     "perspective" TEXT, -- The perspective of reports that do not name one; all categories where it is left out
     "criteria_money_scope" TEXT, -- What the limits apply to

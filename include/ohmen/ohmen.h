@@ -95,6 +95,20 @@ typedef struct ohmen_query {
                                 it; NULL: all. A decision is about all hazards that it reaches */
     const char *date;        /* the day of evaluation, YYYY-MM-DD, until which evidence accrues;
                                 NULL: today (UTC). What the journal knew is another question */
+
+    /* Of ohmen_list and ohmen_hazards alone; the others do not look at it. */
+    const char *const *where; /* conditions, all of which must hold: FIELD=TEXT, FIELD!=TEXT,
+                                 FIELD<TEXT, FIELD<=TEXT, FIELD>TEXT, FIELD>=TEXT, FIELD~TEXT
+                                 (contains), FIELD= (not given), FIELD!= (given). FIELD is a
+                                 field of the documents ("owner", "test/every"), "id" or "name",
+                                 of ohmen_hazards also "rank", "frequency", "damaging", "damage",
+                                 "risk" and "criterion". OHMEN_UNKNOWN for a field that there is
+                                 not, with the nearest name; OHMEN_USAGE for what does not fit
+                                 the field */
+    size_t n_where;
+    const char *sort;         /* the field by which rows are ordered, those without it last, then
+                                 by id; NULL: by id, hazards by rank */
+    bool reverse;             /* from the greatest to the least; needs sort (OHMEN_USAGE) */
 } ohmen_query;
 ohmen_query ohmen_query_defaults(void);
 
@@ -141,6 +155,10 @@ ohmen_status ohmen_protection(ohmen_register *r, const ohmen_query *q, ohmen_rep
 /* Everything of one kind ("elements"), as a table. kind: a section of the documents. */
 ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
                         ohmen_report **out, ohmen_error *e);
+/* What is missing for the register to be kept alive: objects without owner, source, date of
+ * review, status or test, and reviews that are overdue on the day of evaluation. */
+ohmen_status ohmen_gaps(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                        ohmen_error *e);
 /* One object of any kind with all that it says; a hazard with the numbers of its event
  * tree, an element or a scheme with where it is used. */
 ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,
@@ -148,6 +166,9 @@ ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,
 /* A decision: its options and their combinations weighed against doing nothing. */
 ohmen_status ohmen_weigh(ohmen_register *r, const ohmen_query *q, const char *decision,
                          ohmen_report **out, ohmen_error *e);
+/* The memo of one decision, to be attached to a request for money. */
+ohmen_status ohmen_memo(ohmen_register *r, const ohmen_query *q, const char *decision,
+                        ohmen_report **out, ohmen_error *e);
 /* The interval between routine tests of an element that costs least, with what each interval
  * costs per year in tests and in risk. OHMEN_COMPUTE for an element without a test, or on which
  * no hazard depends. */

@@ -21,12 +21,12 @@ size_t utf8_check(const char *s, size_t n)
     return n;
 }
 
-/* Decomposes, orders and composes in memory of the arena. */
-static const char *compose(struct arena *a, const char *s, size_t n)
+/* Decomposes, with `also` folds, orders and composes in memory of the arena. */
+static const char *compose(struct arena *a, const char *s, size_t n, utf8proc_option_t also)
 {
     const utf8proc_uint8_t *from = (const utf8proc_uint8_t *)s;
     utf8proc_ssize_t len = (utf8proc_ssize_t)n;
-    utf8proc_option_t how = UTF8PROC_STABLE | UTF8PROC_COMPOSE;
+    utf8proc_option_t how = UTF8PROC_STABLE | UTF8PROC_COMPOSE | also;
     utf8proc_ssize_t points = utf8proc_decompose(from, len, NULL, 0, how);
     if (points < 0)
         arena_exhausted(a); /* beyond what utf8proc counts: s is valid */
@@ -46,7 +46,17 @@ const char *utf8_nfc(struct arena *a, const char *s)
         ascii = ascii && (unsigned char)s[i] < 0x80;
     if (ascii)
         return s;
-    return compose(a, s, n);
+    return compose(a, s, n, 0);
+}
+
+const char *utf8_fold(struct arena *a, const char *s)
+{
+    bool plain = true;
+    for (const char *p = s; *p; p++)
+        plain = plain && (unsigned char)*p < 0x80 && !(*p >= 'A' && *p <= 'Z');
+    if (plain)
+        return s;
+    return compose(a, s, strlen(s), UTF8PROC_CASEFOLD);
 }
 
 /* What next_point gives for a byte that begins no valid sequence. */
@@ -56,8 +66,7 @@ enum { INVALID_BYTE = -1 };
 static size_t next_point(const char *s, utf8proc_int32_t *c)
 {
     size_t left = strnlen(s, 4);
-    utf8proc_ssize_t len =
-        utf8proc_iterate((const utf8proc_uint8_t *)s, (utf8proc_ssize_t)left, c);
+    utf8proc_ssize_t len = utf8proc_iterate((const utf8proc_uint8_t *)s, (utf8proc_ssize_t)left, c);
     if (len <= 0) {
         *c = INVALID_BYTE;
         return 1;
@@ -80,10 +89,8 @@ static bool must_show(utf8proc_int32_t c)
     case UTF8PROC_CATEGORY_CO:
     case UTF8PROC_CATEGORY_CN:
     case UTF8PROC_CATEGORY_ZL:
-    case UTF8PROC_CATEGORY_ZP:
-        return true;
-    default:
-        break;
+    case UTF8PROC_CATEGORY_ZP: return true;
+    default: break;
     }
     return utf8proc_get_property(c)->ignorable;
 }
@@ -147,8 +154,10 @@ static const char *stand_in(utf8proc_int32_t c)
     case 0x00D7: return "x";
     case 0x2013: return "-";
     case 0x2014: return "--";
-    case 0x2018: case 0x2019: return "'";
-    case 0x201C: case 0x201D: return "\"";
+    case 0x2018:
+    case 0x2019: return "'";
+    case 0x201C:
+    case 0x201D: return "\"";
     case 0x2026: return "...";
     case 0x2192: return "->";
     case 0x2212: return "-";

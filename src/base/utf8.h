@@ -16,6 +16,11 @@ size_t utf8_check(const char *s, size_t n);
  * s is valid UTF-8. */
 const char *utf8_nfc(struct arena *a, const char *s);
 
+/* The text by which texts are compared without regard to case: full case folding (The Unicode
+ * Standard, section 5.18), then normalization form C; s itself when that changes nothing of an
+ * ASCII s. s is valid UTF-8. */
+const char *utf8_fold(struct arena *a, const char *s);
+
 /* Terminal columns of s when printed by utf8_clean without `ascii` (East Asian
  * wide = 2, combining = 0). */
 size_t utf8_columns(const char *s);

@@ -84,10 +84,22 @@ static void read_word(struct reader *r, enum option_id id, const char *text)
     message_set(r->e, OHMEN_USAGE, "--%s needs %s, not '%s'", o->name, list, text);
 }
 
+static void read_repeated(struct reader *r, enum option_id id, const char *text)
+{
+    struct repeated *all = &r->out->repeated[id];
+    if (all->n == REPEATS_MOST)
+        message_set(r->e, OHMEN_USAGE, "--%s is given more than %d times", options[id].name,
+                    REPEATS_MOST);
+    else
+        all->at[all->n++] = text;
+}
+
 static void read_value(struct reader *r, enum option_id id, const char *text)
 {
     const struct option *o = &options[id];
-    if (r->out->given[id] && strcmp(r->out->text[id], text) != 0)
+    if (o->repeats)
+        read_repeated(r, id, text);
+    else if (r->out->given[id] && strcmp(r->out->text[id], text) != 0)
         message_set(r->e, OHMEN_USAGE, "--%s is given twice: '%s' and '%s'", o->name,
                     r->out->text[id], text);
     if (text[strspn(text, " \t")] == 0)

@@ -11,10 +11,17 @@
 
 #include "cli/options.h"
 
+/* The values of an option that may be repeated, in their order. */
+struct repeated {
+    const char *at[REPEATS_MOST];
+    size_t n;
+};
+
 struct args {
     const struct command *command; /* NULL: none, or an unknown one */
     bool given[OPTION_COUNT];
     const char *text[OPTION_COUNT]; /* the value as written; NULL: not given */
+    struct repeated repeated[OPTION_COUNT]; /* those that may be; text has the last one */
     unsigned number[OPTION_COUNT];  /* VALUE_NUMBER: the value; VALUE_WORD: its place */
     char **operands;                /* behind the command */
     size_t n_operands;

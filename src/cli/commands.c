@@ -19,6 +19,7 @@ const char *const command_jobs[JOB_COUNT] = {
 #define WHEN_AND_WHOSE                                                                             \
     (OPTION_BIT(OPTION_AS_OF) | OPTION_BIT(OPTION_PERSPECTIVE) | OPTION_BIT(OPTION_DATE))
 #define READING (ON_REGISTER | FORM | WHEN_AND_WHOSE)
+#define CHOOSING (OPTION_BIT(OPTION_WHERE) | OPTION_BIT(OPTION_SORT) | OPTION_BIT(OPTION_REVERSE))
 #define READING_HAZARDS (READING | OPTION_BIT(OPTION_SITE))
 
 const struct command commands[] = {
@@ -66,13 +67,28 @@ const struct command commands[] = {
              "copy of the file is not safe then.",
      .example = "ohmen -r skerry.ohmen backup skerry-2026-12-01.ohmen",
      .run = command_backup},
+    {"gaps",
+     JOB_KEEP,
+     {0},
+     .options = READING_HAZARDS,
+     .brief = "what is missing: owners, sources, reviews, tests",
+     .text =
+         "Prints each object that lacks something by which a register is kept alive: hazards, "
+         "decisions and options without an owner, hazards and decisions whose review has no "
+         "date or is overdue on the day of evaluation (--date), hazards without a status, or "
+         "being treated without a treatment, numbers without a source, sources that nobody has "
+         "looked up, elements whose failures nothing shows, and groups of people whom no hazard "
+         "harms. The report counts them in a chapter.",
+     .example = "ohmen -r skerry.ohmen gaps",
+     .run = command_gaps},
     {"hazards",
      JOB_RISK,
      {0},
-     .options = READING_HAZARDS,
+     .options = READING_HAZARDS | CHOOSING,
      .brief = "each hazard: frequency, damage, risk, rank",
      .text = "Prints each hazard with its frequency, the frequency of outcomes with damage, the "
-             "mean damage, the risk (frequency times damage, in money per year) and its rank.",
+             "mean damage, the risk (frequency times damage, in money per year) and its rank. "
+             "Conditions (--where) choose among them and leave the ranks as they are.",
      .example = "ohmen -r skerry.ohmen hazards",
      .run = command_hazards},
     {"protection",
@@ -89,10 +105,12 @@ const struct command commands[] = {
     {"list",
      JOB_RISK,
      {"KIND", 1, 1, "a section of the documents, such as elements, schemes, hazards or options"},
-     .options = READING_HAZARDS,
+     .options = READING_HAZARDS | CHOOSING,
      .brief = "everything of one kind, as a table",
-     .text = "Prints all objects of one kind as a table. The kind is named as its section in the "
-             "documents is.",
+     .text = "Prints the objects of one kind as a table. The kind is named as its section in the "
+             "documents is. Conditions choose among them, and a field orders them: ohmen list "
+             "hazards --where \"review<2027-06-30\" --where status=open --sort review. A date of "
+             "review that has passed on the day of evaluation is marked as overdue.",
      .example = "ohmen -r skerry.ohmen list elements",
      .run = command_list},
     {"show",
@@ -133,6 +151,16 @@ const struct command commands[] = {
              "over every hazard that one of them reaches.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
+    {"memo",
+     JOB_DECIDE,
+     {"DECISION", 1, 1, "the decision, such as D-TQ"},
+     .options = READING,
+     .brief = "one decision as a document to be signed",
+     .text = "Prints what is asked, what is recommended, what it costs, what it avoids and for "
+             "whom, how often it ends badly, what it rests on with its sources, what would turn "
+             "it, what is not covered, and who signs.",
+     .example = "ohmen -r skerry.ohmen memo D-TQ --width 80",
+     .run = command_memo},
     {"test-interval",
      JOB_DECIDE,
      {"ELEMENT", 1, 1, "an element with a routine test, such as VH-GAS2"},

@@ -38,6 +38,21 @@ const struct option options[OPTION_COUNT] = {
     [OPTION_SITE] = {"site", 0, VALUE_TEXT, "ID",
                      .help = "only the hazards (of a list: the objects) at this site and at the "
                              "sites in it"},
+    [OPTION_WHERE] =
+        {"where", 0, VALUE_TEXT, "CONDITION", .repeats = true,
+         .help = "only what fulfils the condition, and all of them where it is given "
+                 "several times: FIELD=TEXT, FIELD!=TEXT (or not given), FIELD~TEXT "
+                 "(contains), "
+                 "for dates, counts and quantities also with <, <=, > and >=, "
+                 "FIELD= (not given) and FIELD!= (given). FIELD is a field of the "
+                 "documents (owner, test/every), id or name; with the command "
+                 "hazards also a column: rank, frequency, damaging, damage, risk, criterion. "
+                 "Case does not matter, a site includes the sites in it"},
+    [OPTION_SORT] = {"sort", 0, VALUE_TEXT, "FIELD",
+                     .help = "in the order of a field: numbers and dates by value, quantities by "
+                             "their mean, texts by their letters; what does not have it comes "
+                             "last"},
+    [OPTION_REVERSE] = {"reverse", .help = "in falling order; goes with --sort"},
     [OPTION_WHY] = {"why", 0, VALUE_TEXT, "TEXT",
                     .help = "the reason of the change, kept in the journal"},
     [OPTION_BY] = {"by", 0, VALUE_TEXT, "TEXT",

@@ -7,6 +7,8 @@
 #ifndef CLI_OPTIONS_H
 #define CLI_OPTIONS_H
 
+#include <stdbool.h>
+
 enum option_id {
     OPTION_HELP,
     OPTION_VERSION,
@@ -21,6 +23,9 @@ enum option_id {
     OPTION_PERSPECTIVE,
     OPTION_DATE,
     OPTION_SITE,
+    OPTION_WHERE,
+    OPTION_SORT,
+    OPTION_REVERSE,
     OPTION_WHY,
     OPTION_BY,
     OPTION_DRY_RUN,
@@ -43,6 +48,8 @@ enum option_value {
     VALUE_WORD    /* one of `words` */
 };
 
+enum { REPEATS_MOST = 32 }; /* values of an option that may be repeated */
+
 struct option {
     const char *name; /* without the dashes */
     char letter;      /* the short form, 0: none */
@@ -50,6 +57,7 @@ struct option {
     const char *shown;        /* how help writes the value: "FILE"; NULL for VALUE_NONE */
     unsigned low, high;       /* VALUE_NUMBER */
     const char *const *words; /* VALUE_WORD, NULL-terminated */
+    bool repeats;             /* VALUE_TEXT: may be given several times, all count */
     const char *help;
 };
 

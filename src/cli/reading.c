@@ -19,6 +19,10 @@ ohmen_query reading_query(const struct args *args)
     query.perspective = args->text[OPTION_PERSPECTIVE];
     query.date = args->text[OPTION_DATE];
     query.site = args->text[OPTION_SITE];
+    query.where = args->repeated[OPTION_WHERE].at;
+    query.n_where = args->repeated[OPTION_WHERE].n;
+    query.sort = args->text[OPTION_SORT];
+    query.reverse = args->given[OPTION_REVERSE];
     return query;
 }
 
@@ -79,6 +83,13 @@ static const char *operand(const struct args *args)
     return args->n_operands > 0 ? args->operands[0] : NULL;
 }
 
+static ohmen_status make_gaps(ohmen_register *r, const struct args *args, ohmen_report **out,
+                              ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_gaps(r, &query, out, e);
+}
+
 static ohmen_status make_hazards(ohmen_register *r, const struct args *args, ohmen_report **out,
                                  ohmen_error *e)
 {
@@ -128,6 +139,13 @@ static ohmen_status make_weigh(ohmen_register *r, const struct args *args, ohmen
     return ohmen_weigh(r, &query, operand(args), out, e);
 }
 
+static ohmen_status make_memo(ohmen_register *r, const struct args *args, ohmen_report **out,
+                              ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_memo(r, &query, operand(args), out, e);
+}
+
 static ohmen_status make_test_interval(ohmen_register *r, const struct args *args,
                                        ohmen_report **out, ohmen_error *e)
 {
@@ -153,6 +171,11 @@ static ohmen_status make_verify(ohmen_register *r, const struct args *args, ohme
 {
     (void)args;
     return ohmen_verify(r, out, e);
+}
+
+ohmen_status command_gaps(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_gaps, e);
 }
 
 ohmen_status command_hazards(const struct call *call, ohmen_error *e)
@@ -188,6 +211,11 @@ ohmen_status command_report(const struct call *call, ohmen_error *e)
 ohmen_status command_weigh(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_weigh, e);
+}
+
+ohmen_status command_memo(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_memo, e);
 }
 
 ohmen_status command_test_interval(const struct call *call, ohmen_error *e)

@@ -1,15 +1,20 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What alternatives cost. The options' own figures were compiled before. Private to src/decide. */
+/* What options and alternatives cost. Private to src/decide. */
 #ifndef DECIDE_COST_H
 #define DECIDE_COST_H
 
 #include "decide/money.h"
 #include "decide/timeline.h"
 
-/* The present value of what the options of an alternative cost. */
+/* Compiles the figures of an option: what it costs once, each year and at the end, and the present
+ * value of all that within the horizon. Once for a `struct figures`. */
+ohmen_status cost_compile(struct figures *f, const char *option, const struct compiled **out,
+                          ohmen_error *e);
+
+/* The present value of what the options of an alternative cost; they were compiled. */
 node_id cost_present(const struct money *m, const struct alternative *alt);
 
-/* Does it cost anything within the horizon? The options' own figures have values already. */
+/* Does it cost more than nothing? The options' own figures have values already. */
 bool cost_is_something(const struct money *m, const struct alternative *alt);
 
 #endif

@@ -18,18 +18,26 @@ node_id money_factor(const struct money *m, double years)
     return graph_op2(g, OP_POWER, base, compile_const(m->b, -years, dim_number, NULL));
 }
 
+/* The graph pays in the middle of each year; half a year later is its end. */
+static node_id paid_then(const struct money *m, node_id mid_year)
+{
+    if (m->f->base->settings->yearly_amounts != YEARLY_END_OF_YEAR)
+        return mid_year;
+    return graph_op2(m->f->graph, OP_MULTIPLY, money_factor(m, 0.5), mid_year);
+}
+
 node_id money_annuity(const struct money *m, double from, double to)
 {
     struct graph *g = m->f->graph;
     node_id years = graph_annuity(g, m->rate, compile_const(m->b, from, dim_number, NULL),
                                   compile_const(m->b, to, dim_number, NULL));
-    return graph_op2(g, OP_MULTIPLY, years, m->one_year);
+    return graph_op2(g, OP_MULTIPLY, paid_then(m, years), m->one_year);
 }
 
 node_id money_years(const struct money *m, size_t n, const node_id *amounts, const struct years *y)
 {
     node_id sum = graph_years(m->f->graph, m->rate, n, amounts, y);
-    return graph_op2(m->f->graph, OP_MULTIPLY, sum, m->one_year);
+    return graph_op2(m->f->graph, OP_MULTIPLY, paid_then(m, sum), m->one_year);
 }
 
 node_id money_sum(const struct money *m, size_t n, const node_id *amounts)

@@ -14,19 +14,24 @@ struct service {
 
 struct service timeline_service(const struct figures *f, const char *option, double horizon);
 
-/* A stretch of the horizon in which the same options are in service. */
+/* A stretch of the horizon in which the same options are in service, renewed the same number of
+ * times, and commissioned or not. */
 struct stretch {
     double from, to;
     const struct variant *variant;
 };
 struct stretches ARRAY_BODY(struct stretch);
 
-/* Cuts the horizon where options of the alternative come or go, in order of time. */
+/* Cuts the horizon where options of the alternative come or go, are renewed so that something is new
+ * again, or have been commissioned; in order of time. OHMEN_COMPUTE where what holds together in a
+ * stretch contradicts or leaves the register wrong. */
 ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double horizon,
                           struct stretches *out, ohmen_error *e);
 
 /* The year of the horizon in which a day lies, from 0; what is paid before is paid at its
  * start. By the calendar: the last day of a leap year lies in that year. */
 double timeline_year(const struct register_settings *s, day d);
+/* The same; below 0 for what lies before. */
+double timeline_calendar_year(const struct register_settings *s, day d);
 
 #endif

@@ -8,6 +8,7 @@
 #include <string.h>
 
 #include "decide/alternatives.h"
+#include "decide/cost.h"
 #include "decide/worth.h"
 #include "figure/compile.h"
 #include "figure/supply.h"
@@ -22,35 +23,56 @@ static bool in_focus(const struct decision *d, const char *id)
     return false;
 }
 
+/* Does the alternative change something that the hazard depends on, once or for a time? */
+static bool alternative_reaches(const struct alternative *x, const struct stretches *s,
+                                const char *id)
+{
+    bool reached = variant_reaches(x->variant, id);
+    for (size_t i = 0; i < s->n && !reached; i++)
+        reached = variant_reaches(s->at[i].variant, id);
+    return reached;
+}
+
 /* Hazards that some option reaches, or that are in focus, in byte order; those that
  * exist now. */
-static void find_hazards(struct figures *f, struct weighing *w)
+static void find_hazards(struct figures *f, struct weighing *w, const struct stretches *stretches)
 {
     const struct objects *hazards = &f->base->of[KIND_HAZARD];
     for (size_t i = 0; i < hazards->n; i++) {
         const char *id = hazards->at[i]->id;
         bool reached = in_focus(w->decision, id);
         for (size_t k = 0; k < w->alternatives.n && !reached; k++)
-            reached = variant_reaches(w->alternatives.at[k].variant, id);
+            reached = alternative_reaches(&w->alternatives.at[k], &stretches[k], id);
         if (reached)
             *array_push(f->arena, &w->hazards) =
                 (struct weighed_hazard){id, in_focus(w->decision, id), NULL};
     }
 }
 
+static void add_new_hazard(struct figures *f, struct weighing *w, const struct object *o)
+{
+    bool known = !o || o->kind != KIND_HAZARD;
+    for (size_t h = 0; h < w->hazards.n && !known; h++)
+        known = text_equal(w->hazards.at[h].id, o->id);
+    if (!known)
+        *array_push(f->arena, &w->hazards) = (struct weighed_hazard){o->id, false, NULL};
+}
+
+static void find_new_hazards_of(struct figures *f, struct weighing *w, const struct variant *v)
+{
+    for (const struct model *m = v->model; m->below; m = m->below)
+        for (size_t i = 0; i < m->by_id.n; i++)
+            add_new_hazard(f, w, m->by_id.at[i].value);
+}
+
 /* A hazard that a variant adds is damage that only it has; one that it removes has none. */
-static void find_new_hazards(struct figures *f, struct weighing *w)
+static void find_new_hazards(struct figures *f, struct weighing *w,
+                             const struct stretches *stretches)
 {
     for (size_t k = 0; k < w->alternatives.n; k++) {
-        const struct model *m = w->alternatives.at[k].variant->model;
-        for (size_t i = 0; m->below && i < m->by_id.n; i++) {
-            const struct object *o = m->by_id.at[i].value;
-            bool known = !o || o->kind != KIND_HAZARD;
-            for (size_t h = 0; h < w->hazards.n && !known; h++)
-                known = text_equal(w->hazards.at[h].id, o->id);
-            if (!known)
-                *array_push(f->arena, &w->hazards) = (struct weighed_hazard){o->id, false, NULL};
-        }
+        find_new_hazards_of(f, w, w->alternatives.at[k].variant);
+        for (size_t i = 0; i < stretches[k].n; i++)
+            find_new_hazards_of(f, w, stretches[k].at[i].variant);
     }
 }
 
@@ -74,13 +96,11 @@ static ohmen_status compile_hazards_under(struct figures *f, struct weighing *w,
 }
 
 static ohmen_status compile_alternative_hazards(struct figures *f, struct weighing *w,
-                                                struct alternative *x, struct stretches *stretches,
-                                                ohmen_error *e)
+                                                struct alternative *x,
+                                                const struct stretches *stretches, ohmen_error *e)
 {
     x->hazards = NEW_ARRAY(f->arena, w->hazards.n, const struct compiled *);
     ohmen_status status = compile_hazards_under(f, w, x->variant, x->hazards, e);
-    if (status == OHMEN_OK)
-        status = timeline_cut(f, x, w->horizon, stretches, e);
     for (size_t i = 0; status == OHMEN_OK && i < stretches->n; i++)
         status = compile_hazards_under(f, w, stretches->at[i].variant, NULL, e);
     return status;
@@ -150,45 +170,13 @@ static ohmen_status find_groups(struct figures *f, struct weighing *w, ohmen_err
     return status;
 }
 
-/* --- options --- */
-
-static ohmen_status compile_option(struct figures *f, const char *id, const struct compiled **out,
-                                   ohmen_error *e)
-{
-    const struct variant *base;
-    ohmen_status status = figures_variant(f, 0, NULL, &base, e);
-    struct building b = {.figures = f, .variant = base};
-    const struct object *o = model_find(f->base, id);
-    const struct compiled *known = compiled_of(&b, id);
-    if (known || status != OHMEN_OK) {
-        *out = known;
-        return status;
-    }
-    status = compile_references(f, base, o, e);
-    if (status != OHMEN_OK)
-        return status;
-    const struct option *p = o->data;
-    compiled_begin(f, base, o, id, &b);
-    if (p->invest)
-        compiled_add(&b, PROPERTY_INVEST, NULL, NULL, compile_quantity(&b, p->invest->is),
-                     p->invest->source ? p->invest->source : p->source,
-                     quantity_reads(f, p->invest->is));
-    if (p->running)
-        compiled_add(&b, PROPERTY_RUNNING, NULL, NULL, compile_quantity(&b, p->running->is),
-                     p->running->source ? p->running->source : p->source,
-                     quantity_reads(f, p->running->is));
-    compiled_end(&b);
-    *out = b.unit;
-    return OHMEN_OK;
-}
-
 /* --- the whole --- */
 
 static ohmen_status compile_options(struct figures *f, const struct decision *d, ohmen_error *e)
 {
     for (size_t i = 0; i < d->options.n; i++) {
         const struct compiled *unused;
-        ohmen_status status = compile_option(f, d->options.at[i], &unused, e);
+        ohmen_status status = cost_compile(f, d->options.at[i], &unused, e);
         if (status != OHMEN_OK)
             return status;
     }
@@ -216,34 +204,40 @@ static bool has_pair_left_out(struct figures *f, const struct weighing *w,
     return false;
 }
 
-/* Makes the variants. Options that are right alone may leave the register wrong together,
- * such as two that add a row of the same clearance time: then they are no alternative. */
-static ohmen_status find_variants(struct figures *f, struct weighing *w, ohmen_error *e)
+/* Makes the variants, and cuts the horizon. Options that are right alone may leave the register wrong
+ * together, such as two that add a row of the same clearance time: then they are no alternative. */
+static ohmen_status find_variants(struct figures *f, struct weighing *w,
+                                  struct stretches *stretches, ohmen_error *e)
 {
     size_t kept = 0;
     for (size_t i = 0; i < w->alternatives.n; i++) {
         struct alternative x = w->alternatives.at[i];
+        struct stretches cut = {0};
         ohmen_error why = OHMEN_ERROR_INIT;
         if (has_pair_left_out(f, w, &x))
             continue;
         ohmen_status status = figures_variant(f, x.n, x.options, &x.variant, &why);
         if (status == OHMEN_OK)
+            status = timeline_cut(f, &x, w->horizon, &cut, &why);
+        if (status == OHMEN_OK) {
+            stretches[kept] = cut;
             w->alternatives.at[kept++] = x;
-        else if (status == OHMEN_COMPUTE && x.n > 1)
+        } else if (status == OHMEN_COMPUTE && x.n > 1) {
             *array_push(f->arena, &w->left_out) = (struct not_possible){
                 x.name,
                 arena_printf(f->arena, "together they leave the register wrong: %s", why.text)};
-        else
+        } else {
             return error_set(e, status, "%s", why.text);
+        }
     }
     w->alternatives.n = kept;
     return OHMEN_OK;
 }
 
-static ohmen_status compile_all(struct figures *f, struct weighing *w, ohmen_error *e)
+static ohmen_status compile_all(struct figures *f, struct weighing *w,
+                                const struct stretches *stretches, ohmen_error *e)
 {
     const struct variant *base = w->alternatives.at[0].variant;
-    struct stretches *stretches = NEW_ARRAY(f->arena, w->alternatives.n, struct stretches);
     ohmen_status status = compile_options(f, w->decision, e);
     for (size_t i = 0; status == OHMEN_OK && i < w->alternatives.n; i++)
         status = compile_alternative_hazards(f, w, &w->alternatives.at[i], &stretches[i], e);
@@ -294,12 +288,13 @@ ohmen_status weigh_compile(struct figures *f, const char *decision, struct weigh
     w->decision = d;
     w->horizon = expr_constant(f->base->settings->horizon->expr);
     alternatives_find(f, &d->options, w);
-    ohmen_status status = find_variants(f, w, e);
+    struct stretches *stretches = NEW_ARRAY(f->arena, w->alternatives.n, struct stretches);
+    ohmen_status status = find_variants(f, w, stretches, e);
     if (status != OHMEN_OK)
         return status;
-    find_hazards(f, w);
-    find_new_hazards(f, w);
-    status = compile_all(f, w, e);
+    find_hazards(f, w, stretches);
+    find_new_hazards(f, w, stretches);
+    status = compile_all(f, w, stretches, e);
     if (status == OHMEN_OK)
         *out = w;
     return status;
@@ -344,7 +339,7 @@ ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohm
         status = weigh_compile(f, id, &w, e);
         c = status == OHMEN_OK ? w->unit : NULL;
     } else if (o && o->kind == KIND_OPTION) {
-        status = compile_option(f, o->id, &c, e);
+        status = cost_compile(f, o->id, &c, e);
     } else {
         return figures_find(f, name, out, e);
     }

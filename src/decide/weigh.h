@@ -11,9 +11,15 @@
  *   it is left out); a date is its calendar years from there plus days / 365;
  * - an investment is paid at the start of its year of the horizon: (1 + r)^-floor(t), where
  *   the last day of a leap year still lies in that year; behind the horizon it is no cost;
- * - damage and running cost are paid in the middle of each year;
+ * - damage and running cost are paid in the middle of each year, or at its end where the
+ *   register says so (money.h);
  * - an option changes the register from its in-service date until the end of its life or of
  *   the horizon; before and behind that the register is as the other options leave it;
+ * - one that is renewed is in service to the end of the horizon; at each renewal it is paid
+ *   again, and what it brings is new again; at the beginning and at each renewal it is
+ *   commissioned (figure/service.h);
+ * - what an option is worth at the end of the horizon is taken off its cost, if it is in
+ *   service until then;
  * - the damage that an alternative avoids is summed hazard by hazard: (risk now - risk then)
  *   times the annuity of the time in which the same options change the hazard;
  * - damage is summed over every hazard that any option of the decision reaches, and
@@ -41,10 +47,10 @@ struct perspective_worth {
 struct alternative {
     const char *name; /* "do-nothing", "FIT-87B", "FIT-87B+TEST" */
     size_t n;
-    const char *const *options;                    /* in byte order */
-    const struct variant *variant;                 /* all of them in service */
-    figure_id present_damage, present_cost, total; /* of doing nothing too */
-    figure_id net, benefit, ratio;                 /* ratio: only where it costs something */
+    const char *const *options;                                 /* in byte order */
+    const struct variant *variant;                              /* all of them in service */
+    figure_id present_damage, present_cost, annual_cost, total; /* of doing nothing too */
+    figure_id net, benefit, ratio;       /* ratio: only where it costs more than nothing */
     figure_id avoids;                    /* risk avoided in a mean year, once all are in service */
     struct perspective_worth *of;        /* by perspective of the register */
     figure_id avoids_time, present_time; /* customer time without supply avoided */

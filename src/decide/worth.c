@@ -1,7 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The section of a decision: present values of damage and cost for each alternative.
- * Beside the
- * money that the chosen perspective bears: what every perspective bears, customers without supply,
+/* The section of a decision: present values of damage and cost for each alternative. Beside the money
+ * that the chosen perspective bears: what every perspective bears, customers without supply,
  * deaths. All hazards and options that it reads were compiled before. */
 #include "decide/worth.h"
 
@@ -109,6 +108,9 @@ static void add_money(struct worth *x, struct alternative *alt, const struct str
     node_id total = graph_op2(g, OP_ADD, damage, cost);
     alt->present_damage = add(x, PROPERTY_PRESENT_DAMAGE, alt, NULL, damage);
     alt->present_cost = add(x, PROPERTY_PRESENT_COST, alt, NULL, cost);
+    alt->annual_cost =
+        add(x, PROPERTY_ANNUAL_COST, alt, NULL,
+            graph_op2(g, OP_DIVIDE, cost, money_annuity(&x->money, 0, x->w->horizon)));
     alt->total = add(x, PROPERTY_TOTAL, alt, NULL, total);
     if (alt->n == 0)
         return;

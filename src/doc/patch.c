@@ -179,6 +179,27 @@ struct node *patch_apply(struct arena *a, const struct patch_rules *rules,
     return m.failed ? NULL : result;
 }
 
+/* ---- what another patch settles ---- */
+
+const struct node *patch_without(struct arena *a, const struct patch_rules *rules,
+                                 const struct node *patch, const struct node *settled)
+{
+    if (settled->type != NODE_MAP)
+        return uses_was(rules, settled) ? patch : NULL;
+    if (patch->type != NODE_MAP || patch->n == 0)
+        return patch;
+    struct node *rest = node_map(a, patch->place);
+    struct step s = {.p = in_order(a, patch), .q = in_order(a, settled)};
+    while (next_step(&s)) {
+        const struct node *left = s.of_p ? s.of_p->value : NULL;
+        if (s.of_p && s.of_q)
+            left = patch_without(a, rules, left, s.of_q->value);
+        if (left)
+            node_add(a, rest, s.of_p->key, s.of_p->place, (struct node *)left);
+    }
+    return rest->n ? rest : NULL;
+}
+
 /* ---- contradictions ---- */
 
 static const char *contradiction(struct merge *m, const struct node *p, const struct node *q,

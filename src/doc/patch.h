@@ -50,6 +50,13 @@ struct differences ARRAY_BODY(struct difference);
 void patch_differences(struct arena *a, const struct node *before, const struct node *after,
                        struct differences *out);
 
+/* The patch without what `settled`, another patch of the same target, says outright: at each path
+ * where that has a scalar (which does not use `was`), a removal or a list, the patch says nothing
+ * any more. Maps that this leaves empty go too. NULL when nothing is left; what is not touched is
+ * shared. A scalar or list where `settled` has a map stays. */
+const struct node *patch_without(struct arena *a, const struct patch_rules *rules,
+                                 const struct node *patch, const struct node *settled);
+
 /* A place where two patches contradict: both set a path to different values,
  * one removes what the other touches, or one uses `was` where the other sets.
  * Both using `was` is no contradiction (they are products). Returns the path, or

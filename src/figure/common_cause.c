@@ -69,11 +69,13 @@ void groups_of(struct figures *f, const struct model *m, const char *element, st
     for (size_t i = 0; base && i < base->n; i++)
         if (model_find(m, base->at[i]->id) == base->at[i])
             add_sorted(f->arena, out, base->at[i]);
-    for (size_t i = 0; m->below && i < m->by_id.n; i++) {
-        const struct object *o = m->by_id.at[i].value;
-        if (o && o->kind == KIND_COMMON_CAUSE && has_member(o, element))
-            add_sorted(f->arena, out, o);
-    }
+    for (const struct model *at = m; at->below; at = at->below)
+        for (size_t i = 0; i < at->by_id.n; i++) {
+            const struct object *o = at->by_id.at[i].value;
+            if (o && o->kind == KIND_COMMON_CAUSE && model_find(m, o->id) == o &&
+                has_member(o, element))
+                add_sorted(f->arena, out, o);
+        }
 }
 
 /* --- shares --- */
@@ -225,7 +227,7 @@ static void set_found(const struct group_building *g, struct making *k)
     k->finds = x->finds;
     k->revealed = x->revealed;
     k->tested = x->tested;
-    element_instants(g->b->figures, g->finder_data, k);
+    element_instants(g->b, g->finder_data, k);
     if (g->x->settings && !g->x->found_by && k->tested) {
         k->tested = false;
         k->finds = NODE_NONE;
@@ -434,7 +436,7 @@ static void compile_alone_unit(struct figures *f, const struct variant *v, const
             in_repair(&b, parts[DETECTED], whole->repair, "alone");
     if (whole->other != NODE_NONE)
         k.standing[k.n_standing++] = whole->other;
-    element_instants(f, o->data, &k);
+    element_instants(&b, o->data, &k);
     x->whole = compile_behaviour(&b, &k, &x->span);
     b.unit->exports = x;
     b.unit->main = x->whole.fails;

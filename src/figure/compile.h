@@ -113,7 +113,7 @@ bool element_is_breaker(const struct model *m, const struct element *x);
 /* Does it only carry out the trip command: a breaker or its trip circuit? */
 bool element_is_tripped(const struct model *m, const struct element *x);
 /* Sets tested, when and dated of a making as the element's documents say. */
-void element_instants(const struct figures *f, const struct element *x, struct making *m);
+void element_instants(const struct building *b, const struct element *x, struct making *m);
 /* A common cause and its members. */
 ohmen_status compile_group(struct figures *f, const struct variant *v, const struct object *o,
                            struct compiled **out, ohmen_error *e);

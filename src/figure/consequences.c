@@ -15,6 +15,10 @@
  * nothing else. */
 static const double FIVE_MINUTES = 5.0 / 525600;
 
+/* What is longer than the limit by less than this share of it is as long: 1 h / 12 and 5 min may
+ * differ by rounding. */
+static const double SAME_TIME = 1e-9;
+
 /* How often it comes to each end in one slot of hazard_exports.yearly. */
 struct slot {
     const char *label; /* "2031" */
@@ -362,7 +366,7 @@ static node_id if_sustained(struct counting *c, node_id lasts, node_id x, bool s
     struct building *b = &c->b;
     struct graph *g = c->f->graph;
     node_id nothing = compile_const(b, 0, graph_dim(g, x), NULL);
-    double longer = nextafter(threshold(c->f), INFINITY); /* longer than it, not as long */
+    double longer = nextafter(threshold(c->f) * (1 + SAME_TIME), INFINITY);
     node_id args[] = {lasts, compile_const(b, 0, dim_time, NULL), sustained ? nothing : x,
                       compile_const(b, longer, dim_time, NULL), sustained ? x : nothing};
     return graph_op(g, OP_LOOKUP, 5, args);

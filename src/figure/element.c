@@ -9,6 +9,7 @@
 #include "evidence/posterior.h"
 #include "figure/horizon.h"
 #include "figure/span.h"
+#include "figure/states.h"
 
 /* One element under construction. */
 struct element_building {
@@ -199,8 +200,9 @@ static double first_test(const struct figures *f, const struct test *t, double f
     return from + fmax(k, 1) * every;
 }
 
-void element_instants(const struct figures *f, const struct element *x, struct making *m)
+void element_instants(const struct building *b, const struct element *x, struct making *m)
 {
+    const struct figures *f = b->figures;
     const struct register_settings *s = f->base->settings;
     const struct test *t = x->test;
     day sound = later_of(x->since, x->known), last = t ? t->last : DAY_NONE;
@@ -219,8 +221,9 @@ void element_instants(const struct figures *f, const struct element *x, struct m
     }
     if (t)
         c.first = m->dated ? first_test(f, t, c.from, every) : every;
-    c.from = fmin(c.from, 0); /* what comes later is taken to be there from the start */
-    c.born = fmin(c.born, 0);
+    double there = variant_begins(f, b->variant); /* what comes later is taken to be there then */
+    c.from = fmin(c.from, there);
+    c.born = fmin(c.born, there);
     m->tested = t != NULL;
     m->when = c;
 }
@@ -296,7 +299,8 @@ static node_id unfound(struct building *b, const struct making *m, node_id untes
     struct figures *f = b->figures;
     const char *q = m->q1 ? arena_printf(f->arena, "%s.unfound", m->q1) : "unfound";
     struct course when = {m->when.from, INFINITY, 0, m->when.born, true};
-    struct window horizon = {0, horizon_length(f->base->settings)};
+    struct window horizon = {fmax(fmax(m->when.from, m->when.born), 0),
+                             horizon_length(f->base->settings)};
     struct windows over = {1, &horizon};
     node_id none = compile_const(b, 0, dim_number, NULL);
     node_id args[5] = {none, rate_or_zero(b, NODE_NONE), rate_or_zero(b, m->revealed), none,
@@ -428,7 +432,7 @@ static struct making making_of(struct element_building *m)
     push(&k, x->in_repair);
     x->other = either(b->figures->graph, out, share_in_test(m));
     push(&k, x->other);
-    element_instants(b->figures, m->x, &k);
+    element_instants(b, m->x, &k);
     return k;
 }
 

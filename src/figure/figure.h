@@ -82,9 +82,11 @@
     X(FATALITIES, "fatalities", "expected deaths in a group per year")                             \
     X(INVEST, "invest", "investment of an option")                                                 \
     X(RUNNING, "running", "running cost of an option per year")                                    \
+    X(RESIDUAL, "residual", "what an option is worth at the end of the horizon")                   \
     X(DISCOUNT, "discount", "interest per year")                                                   \
     X(PRESENT_DAMAGE, "present-damage", "present value of the damage over the horizon")            \
-    X(PRESENT_COST, "present-cost", "present value of investment and running cost")                \
+    X(PRESENT_COST, "present-cost", "present value of investments and running cost")               \
+    X(ANNUAL_COST, "equivalent-annual-cost", "the same cost each year of the horizon")             \
     X(TOTAL, "total", "present value of damage and cost together")                                 \
     X(NET, "net-present-value", "what an alternative is worth against doing nothing")              \
     X(BENEFIT, "benefit", "present value of the damage that an alternative avoids")                \
@@ -141,6 +143,7 @@ struct span {
     bool yearly;             /* windows are years of the horizon */
     uint32_t years;          /* of the horizon */
     const uint32_t *of_year; /* yearly: the window that holds in each */
+    double from;             /* yearly: what there was not before; its year is a window from there */
 };
 
 /* What an element shows to common causes and to the report. */
@@ -177,19 +180,24 @@ struct figure {
     const char *text;   /* of a leaf: how it was written ("90 % within ..."), or NULL */
 };
 
-enum change_sort { CHANGE_OPTION, CHANGE_STATE, CHANGE_MADE_UP };
+enum change_sort { CHANGE_OPTION, CHANGE_RENEWAL, CHANGE_EARLY, CHANGE_STATE, CHANGE_MADE_UP };
 
 struct change {
     enum change_sort sort;
-    const char *name;          /* as in names of figures: "FIT", "T2-OUT=a-out", "[test at 2 a]" */
+    const char *name;          /* as in names of figures: "FIT", "FIT:2049", "FIT:early",
+                                  "T2-OUT=a-out", "[test at 2 a]" */
     const char *state, *value; /* of a state */
     const struct node *node;   /* bound; NULL: changes nothing, or of an option */
+    const char *option;        /* of a renewal or a commissioning period */
+    size_t renewal;            /* which one, from 1 */
 };
 
-/* A set of changes and the model that they make. */
+/* A set of changes and the model that they make: that of options, states and what is made up, over
+ * it the renewals, and over these the commissioning periods. A renewal or a commissioning period
+ * stands only beside its option. */
 struct variant {
-    size_t n; /* changes: options, then states, then those made up, each in
-                                     byte order of names */
+    size_t n; /* changes: options, renewals, commissioning periods, then states, then those made up,
+                 each in byte order of names */
     const struct change *changes;
     size_t n_options;
     const char *const *options; /* names of the first changes */
@@ -264,9 +272,10 @@ struct figures {
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
                          day date, struct figures **out, ohmen_error *e);
 
-/* The variant of a set of options, in any order. OHMEN_UNKNOWN for what is no option or
- * stands twice, OHMEN_COMPUTE when they contradict or leave the register wrong: the message
- * is the first diagnostic. */
+/* The variant of a set of options, in any order, and of their renewals ("FIT:2049") and
+ * commissioning periods ("FIT:early"). OHMEN_UNKNOWN for what is no option, has no such renewal or
+ * period, or stands twice, OHMEN_COMPUTE when they contradict or leave the register wrong: the
+ * message is the first diagnostic. */
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e);
 

@@ -74,11 +74,33 @@ static const char *without_variant(struct arena *a, const char *name)
     return at ? arena_strn(a, name, (size_t)(at - name)) : name;
 }
 
-/* Exports of a part are others. */
+/* Is `word` what stands before the first dot? */
+static bool begins_with(const char *rest, const char *word)
+{
+    size_t n = strlen(word);
+    return strncmp(rest, word, n) == 0 && (rest[n] == 0 || rest[n] == '.');
+}
+
+/* The unit that a part belongs to; itself. */
+static const struct compiled *main_unit(const struct compiled *u)
+{
+    while (u->part && u->also)
+        u = u->also;
+    return u;
+}
+
 static bool is_mean(const struct compiled *u)
 {
-    return u->object && u->object->kind == KIND_HAZARD && !u->part &&
+    return !u->part && u->object && u->object->kind == KIND_HAZARD &&
            ((const struct hazard_exports *)u->exports)->n_states;
+}
+
+/* Is it asked for what a mean has not? Its consequences are means too, but not what belongs to
+ * single ends. */
+static bool is_of_one_state(const struct compiled *u, const char *rest)
+{
+    return !u->part || begins_with(rest, properties[PROPERTY_DAMAGE].word) ||
+           begins_with(rest, properties[PROPERTY_CLEARANCE].word);
 }
 
 /* Ends and what belongs to them are those of one state. */
@@ -115,8 +137,8 @@ ohmen_status compiled_find(struct figures *f, const struct compiled *u, const ch
     if (!*rest && u->main != FIGURE_NONE)
         return error_set(e, OHMEN_UNKNOWN, "\"%s\" is an object; its main figure is %s", u->id,
                          figure_name(f, f->arena, u->main));
-    if (is_mean(u))
-        return unknown_of_mean(f, u, rest, e);
+    if (is_mean(main_unit(u)) && is_of_one_state(u, rest))
+        return unknown_of_mean(f, main_unit(u), rest, e);
     return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no figure \"%s\"%s", u->id, rest,
                      nearest_hint(f->arena, &near));
 }
@@ -168,13 +190,6 @@ static const struct part {
 #undef ASSERTED
 #undef STATED
 };
-
-/* Is `word` what stands before the first dot? */
-static bool begins_with(const char *rest, const char *word)
-{
-    size_t n = strlen(word);
-    return strncmp(rest, word, n) == 0 && (rest[n] == 0 || rest[n] == '.');
-}
 
 /* The part of an object in which such a figure is, or NULL. */
 static const struct part *part_of(const struct object *o, const char *rest)

@@ -131,7 +131,7 @@ static node_id add_years(struct building *b, const struct hazard *h, struct freq
     }
     b->year = NULL;
     x->yearly = yearly;
-    struct span all = {{n, windows}, true, n, of_year};
+    struct span all = {{n, windows}, true, n, of_year, 0};
     return span_mean(b, &all, yearly);
 }
 

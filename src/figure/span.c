@@ -86,20 +86,38 @@ static bool all_repeat(size_t n, const struct behaviour *const *parts, double ye
     return true;
 }
 
+/* The last beginning of one of them; 0 where all are there from the start. */
+static double all_there(size_t n, const struct behaviour *const *parts)
+{
+    double from = 0;
+    for (size_t i = 0; i < n; i++)
+        if (parts[i]->timed)
+            from = fmax(from, fmax(parts[i]->when.from, parts[i]->when.born));
+    return from;
+}
+
+static bool is_whole(struct window w)
+{
+    return w.to - w.from == 1;
+}
+
 static struct span years(struct figures *f, size_t n, const struct behaviour *const *parts)
 {
     uint32_t length = horizon_length(f->base->settings), kept = 0;
+    double from = all_there(n, parts);
     struct window *windows = NEW_ARRAY(f->arena, length, struct window);
     uint32_t *of_year = NEW_ARRAY(f->arena, length, uint32_t);
-    for (uint32_t y = 0; y < length; y++) {
+    for (uint32_t y = (uint32_t)from; y < length; y++) {
+        struct window year = {fmax(y, from), y + 1.0};
         uint32_t w = 0;
-        while (w < kept && !all_repeat(n, parts, y, windows[w].from))
+        while (w < kept && !(is_whole(windows[w]) && is_whole(year) &&
+                             all_repeat(n, parts, y, windows[w].from)))
             w++;
         if (w == kept)
-            windows[kept++] = (struct window){y, y + 1.0};
+            windows[kept++] = year;
         of_year[y] = w;
     }
-    return (struct span){{kept, windows}, true, length, of_year};
+    return (struct span){{kept, windows}, true, length, of_year, from};
 }
 
 /* --- the whole --- */
@@ -129,10 +147,11 @@ node_id span_mean(struct building *b, const struct span *s, const node_id *value
     if (!s->yearly)
         return values[0];
     struct graph *g = b->figures->graph;
-    struct years y = {0, s->years, s->years, s->of_year};
+    uint32_t first = (uint32_t)s->from;
+    struct years y = {s->from, s->years, s->years - first, s->of_year + first};
     node_id rate = compile_const(b, 0, dim_number, NULL);
     node_id sum = graph_years(g, rate, s->windows.n, values, &y);
-    return graph_op2(g, OP_DIVIDE, sum, compile_const(b, s->years, dim_number, NULL));
+    return graph_op2(g, OP_DIVIDE, sum, compile_const(b, s->years - s->from, dim_number, NULL));
 }
 
 const char *span_label(struct figures *f, const struct span *s, uint32_t window)

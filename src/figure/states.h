@@ -43,6 +43,10 @@ ohmen_status variant_made_up(struct figures *f, const struct variant *base,
                              const struct change *change, const struct variant **out,
                              ohmen_error *e);
 
+/* The time from which all changes of options of the variant hold, in years from the start of the
+ * horizon; 0 where that lies before it, or behind its end. */
+double variant_begins(const struct figures *f, const struct variant *v);
+
 /* Does a reference to this object compute anything? */
 bool reference_computes(const struct reference *r, const struct object *to);
 

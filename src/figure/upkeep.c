@@ -93,7 +93,7 @@ static void add_on_time(struct building *b, struct upkeep *u)
     struct figures *f = b->figures;
     const struct element_exports *x = exports_of(u->element);
     struct course c = x->whole.when;
-    c = (struct course){.first = x->every, .every = x->every, .born = c.born};
+    c = (struct course){.first = x->every, .every = x->every, .born = fmin(c.born, 0)};
     node_id course = changed_course(f, x, &c);
     double length = x->whole.ages ? horizon_length(f->base->settings) : x->every;
     struct window w = {0, length};

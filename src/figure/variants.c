@@ -7,8 +7,13 @@
  * is a mean over. Variants are made once each and kept. */
 #include "figure/states.h"
 
+#include <math.h>
 #include <stdlib.h>
 #include <string.h>
+
+#include "doc/patch.h"
+#include "figure/horizon.h"
+#include "figure/service.h"
 
 static int by_sort_and_name(const void *p, const void *q)
 {
@@ -76,6 +81,14 @@ static bool refers_to(const struct object *o, const char *id)
     return false;
 }
 
+static bool is_changed(const struct model *m, const char *id)
+{
+    for (; m->below; m = m->below)
+        if (strmap_has(&m->by_id, id))
+            return true;
+    return false;
+}
+
 /* Everything that uses `id`: base objects that the variant left alone, and those that it
  * changed by their new references. */
 static void reach_users(struct reaching *w, const char *id)
@@ -83,13 +96,14 @@ static void reach_users(struct reaching *w, const char *id)
     const struct model *m = w->variant->model;
     const struct objects *users = strmap_get(&w->f->used_by, id);
     for (size_t i = 0; users && i < users->n; i++)
-        if (!strmap_has(&m->by_id, users->at[i]->id))
+        if (!is_changed(m, users->at[i]->id))
             reach(w, users->at[i]->id);
-    for (size_t i = 0; i < m->by_id.n; i++) {
-        const struct object *o = m->by_id.at[i].value;
-        if (o && kinds[o->kind].computes && refers_to(o, id))
-            reach(w, o->id);
-    }
+    for (const struct model *at = m; at->below; at = at->below)
+        for (size_t i = 0; i < at->by_id.n; i++) {
+            const struct object *o = at->by_id.at[i].value;
+            if (o && kinds[o->kind].computes && model_find(m, o->id) == o && refers_to(o, id))
+                reach(w, o->id);
+        }
 }
 
 /* What fails together with others changes when its common cause does. */
@@ -105,22 +119,48 @@ static void reach_members(struct reaching *w, const struct object *o)
 static struct model_change laid_over(const struct figures *f, const struct change *c)
 {
     static const struct place nowhere = {.file = "register", .path = "register"};
-    static const char *const words[] = {"option", "state", "change"};
+    static const char *const words[] = {"option", "renewal", "commissioning period", "state",
+                                        "change"};
     if (c->sort == CHANGE_OPTION)
         return model_option_change(f->base, c->name);
-    return (struct model_change){words[c->sort], c->name, c->node,
-                                 c->node ? c->node->place : nowhere};
+    return (struct model_change){
+        words[c->sort], c->name, c->node, c->node ? c->node->place : nowhere, NULL, {0}};
+}
+
+struct change_nodes ARRAY_BODY(const struct node *);
+
+/* What change i of a variant changes: an option also what it settles with the others. */
+static struct change_nodes nodes_of(struct figures *f, const struct variant *v, size_t i)
+{
+    const struct change *c = &v->changes[i];
+    struct change_nodes all = {0};
+    const struct node *own = laid_over(f, c).node;
+    if (own)
+        *array_push(f->arena, &all) = own;
+    for (size_t k = 0; k < v->n_options && c->sort == CHANGE_OPTION; k++) {
+        const struct node *settled =
+            k == i ? NULL : model_combination(f->base, c->name, v->options[k]);
+        if (settled)
+            *array_push(f->arena, &all) = settled;
+    }
+    return all;
+}
+
+static void reach_changed(struct reaching *w, const struct node *change)
+{
+    for (size_t s = 0; s < change->n; s++) {
+        const struct pair *section = &change->pairs[s];
+        for (size_t k = 0; k < section->value->n; k++)
+            reach(w, section->value->pairs[k].key);
+    }
 }
 
 static void find_reached(struct figures *f, struct variant *v, size_t i)
 {
     struct reaching w = {.f = f, .variant = v, .reached = &v->reached[i]};
-    const struct node *node = laid_over(f, &v->changes[i]).node;
-    for (size_t s = 0; node && s < node->n; s++) {
-        const struct pair *section = &node->pairs[s];
-        for (size_t k = 0; k < section->value->n; k++)
-            reach(&w, section->value->pairs[k].key);
-    }
+    struct change_nodes all = nodes_of(f, v, i);
+    for (size_t k = 0; k < all.n; k++)
+        reach_changed(&w, all.at[k]);
     for (size_t k = 0; k < w.todo.n; k++) {
         reach_users(&w, w.todo.at[k]);
         reach_members(&w, model_find(f->base, w.todo.at[k]));
@@ -128,15 +168,64 @@ static void find_reached(struct figures *f, struct variant *v, size_t i)
     }
 }
 
-static const struct model *make_model(struct figures *f, size_t n, const struct change *changes,
+/* --- models --- */
+
+/* The layers of a variant, the lowest first. */
+enum layer { LAYER_CHANGES, LAYER_RENEWALS, LAYER_EARLY, LAYERS };
+
+static enum layer layer_of(const struct change *c)
+{
+    return c->sort == CHANGE_RENEWAL ? LAYER_RENEWALS
+           : c->sort == CHANGE_EARLY ? LAYER_EARLY
+                                     : LAYER_CHANGES;
+}
+
+static double instant_of(const struct figures *f, const struct change *c)
+{
+    struct life life = life_of(f, c->option);
+    return life_renewal(&life, c->renewal);
+}
+
+/* What two renewals make new is as the later one leaves it. */
+static void leave_to_later(struct figures *f, size_t n, struct change *changes, size_t i)
+{
+    struct change *c = &changes[i];
+    for (size_t k = 0; k < n && c->node; k++) {
+        if (k == i || changes[k].sort != CHANGE_RENEWAL || !changes[k].node ||
+            instant_of(f, &changes[k]) <= instant_of(f, c))
+            continue;
+        const struct patch_rules plain = {0};
+        c->node = patch_without(f->arena, &plain, c->node, changes[k].node);
+    }
+}
+
+/* What renewals change depends on the register as the options leave it. */
+static void find_renewed(struct figures *f, size_t n, struct change *changes, const struct model *m)
+{
+    for (size_t i = 0; i < n; i++)
+        if (changes[i].sort == CHANGE_RENEWAL)
+            changes[i].node = renewal_change(f, m, changes[i].option, changes[i].renewal);
+    for (size_t i = 0; i < n; i++)
+        if (changes[i].sort == CHANGE_RENEWAL)
+            leave_to_later(f, n, changes, i);
+}
+
+static const struct model *make_model(struct figures *f, size_t n, struct change *changes,
                                       ohmen_error *e)
 {
     struct diags d;
     diags_init(&d, f->arena);
     struct model_change *all = NEW_ARRAY(f->arena, n, struct model_change);
-    for (size_t i = 0; i < n; i++)
-        all[i] = laid_over(f, &changes[i]);
-    const struct model *m = model_change(f->arena, f->base, n, all, &d);
+    const struct model *m = f->base;
+    for (int layer = 0; m && layer < LAYERS; layer++) {
+        size_t k = 0;
+        if (layer == LAYER_RENEWALS)
+            find_renewed(f, n, changes, m);
+        for (size_t i = 0; i < n; i++)
+            if (layer_of(&changes[i]) == (enum layer)layer)
+                all[k++] = laid_over(f, &changes[i]);
+        m = model_change(f->arena, m, k, all, &d);
+    }
     if (m)
         return m;
     diags_sort(&d);
@@ -144,7 +233,7 @@ static const struct model *make_model(struct figures *f, size_t n, const struct 
     return NULL;
 }
 
-static ohmen_status make_variant(struct figures *f, size_t n, const struct change *changes,
+static ohmen_status make_variant(struct figures *f, size_t n, struct change *changes,
                                  struct variant **out, ohmen_error *e)
 {
     const struct model *m = make_model(f, n, changes, e);
@@ -219,19 +308,86 @@ static ohmen_status unknown_option(struct figures *f, const char *id, ohmen_erro
                      nearest_hint(f->arena, &near));
 }
 
+static bool is_among(const char *name, size_t n, const char *const *names)
+{
+    for (size_t i = 0; i < n; i++)
+        if (text_equal(names[i], name))
+            return true;
+    return false;
+}
+
+/* "2049": which renewal of the option that is, or 0. */
+static size_t renewal_named(const struct figures *f, const char *option, const char *label)
+{
+    struct life life = life_of(f, option);
+    for (size_t k = life_renewals(&life); k > 0; k--)
+        if (text_equal(life_label(f->arena, f, &life, k), label))
+            return k;
+    return 0;
+}
+
+/* "OPTION:2049" or "OPTION:early"; the option is one of the names too. */
+static ohmen_status period_named(struct figures *f, const char *name, size_t n,
+                                 const char *const *names, struct change *out, ohmen_error *e)
+{
+    const char *colon = strchr(name, ':');
+    const char *option = arena_strn(f->arena, name, (size_t)(colon - name));
+    const struct option *o = model_get(f->base, KIND_OPTION, option);
+    if (!o)
+        return unknown_option(f, option, e);
+    if (!is_among(option, n, names))
+        return error_set(e, OHMEN_UNKNOWN, "\"%s\" goes with its option: \"%s+%s\"", name, option,
+                         name);
+    if (text_equal(colon + 1, EARLY)) {
+        *out = (struct change){.sort = CHANGE_EARLY, .name = name, .option = option};
+        out->node = o->early ? o->early->change : NULL;
+        return o->early ? OHMEN_OK
+                        : error_set(e, OHMEN_UNKNOWN,
+                                    "the option \"%s\" has no commissioning period", option);
+    }
+    *out = (struct change){.sort = CHANGE_RENEWAL, .name = name, .option = option};
+    out->renewal = renewal_named(f, option, colon + 1);
+    return out->renewal ? OHMEN_OK
+                        : error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is not renewed in \"%s\"",
+                                    option, colon + 1);
+}
+
+static ohmen_status option_named(struct figures *f, size_t n, const char *const *names, size_t i,
+                                 struct change *out, ohmen_error *e)
+{
+    if (is_among(names[i], i, names))
+        return error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is named twice", names[i]);
+    if (strchr(names[i], ':'))
+        return period_named(f, names[i], n, names, out, e);
+    if (!model_get(f->base, KIND_OPTION, names[i]))
+        return unknown_option(f, names[i], e);
+    *out = (struct change){.sort = CHANGE_OPTION, .name = names[i]};
+    return OHMEN_OK;
+}
+
+/* One option is renewed for the last time only once. */
+static ohmen_status one_renewal_each(size_t n, const struct change *changes, ohmen_error *e)
+{
+    for (size_t i = 0; i < n; i++)
+        for (size_t k = 0; k < i; k++)
+            if (changes[i].sort == CHANGE_RENEWAL && changes[k].sort == CHANGE_RENEWAL &&
+                text_equal(changes[i].option, changes[k].option))
+                return error_set(e, OHMEN_UNKNOWN, "\"%s\" and \"%s\" are renewals of one option",
+                                 changes[k].name, changes[i].name);
+    return OHMEN_OK;
+}
+
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e)
 {
     struct change *changes = NEW_ARRAY(f->arena, n, struct change);
     for (size_t i = 0; i < n; i++) {
-        if (!model_get(f->base, KIND_OPTION, options[i]))
-            return unknown_option(f, options[i], e);
-        for (size_t k = 0; k < i; k++)
-            if (text_equal(options[i], options[k]))
-                return error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is named twice", options[i]);
-        changes[i] = (struct change){.sort = CHANGE_OPTION, .name = options[i]};
+        ohmen_status status = option_named(f, n, options, i, &changes[i], e);
+        if (status != OHMEN_OK)
+            return status;
     }
-    return variant_of(f, n, changes, out, e);
+    ohmen_status status = one_renewal_each(n, changes, e);
+    return status == OHMEN_OK ? variant_of(f, n, changes, out, e) : status;
 }
 
 /* --- states and made-up changes --- */
@@ -253,7 +409,7 @@ ohmen_status variant_in_state(struct figures *f, const struct variant *base,
 {
     const struct state *s = state->data;
     struct model_change m = model_state_change(f->arena, state, value);
-    struct change c = {CHANGE_STATE, m.name, state->id, s->varies.keys[value], m.node};
+    struct change c = {CHANGE_STATE, m.name, state->id, s->varies.keys[value], m.node, NULL, 0};
     return variant_and(f, base, &c, out, e);
 }
 
@@ -424,19 +580,30 @@ static ohmen_status find_kept(struct figures *f, const struct variant *v, const 
 }
 
 /* Does a change touch this state itself? */
-static bool touches_state(const struct figures *f, const struct change *c, const char *state)
+static bool touches_state(struct figures *f, const struct variant *v, size_t i, const char *state)
 {
-    const struct node *states = node_get(laid_over(f, c).node, kinds[KIND_STATE].section);
-    return node_get(states, state) != NULL;
+    struct change_nodes all = nodes_of(f, v, i);
+    for (size_t k = 0; k < all.n; k++)
+        if (node_get(node_get(all.at[k], kinds[KIND_STATE].section), state))
+            return true;
+    return false;
 }
 
 /* A state means what the other changes make of it: those go with it. */
-static void keep_makers_of_states(const struct figures *f, const struct variant *v, bool *keep)
+static void keep_makers_of_states(struct figures *f, const struct variant *v, bool *keep)
 {
     for (size_t i = 0; i < v->n; i++)
         for (size_t k = 0; keep[i] && v->changes[i].sort == CHANGE_STATE && k < v->n; k++)
             keep[k] = keep[k] || (v->changes[k].sort != CHANGE_STATE &&
-                                  touches_state(f, &v->changes[k], v->changes[i].state));
+                                  touches_state(f, v, k, v->changes[i].state));
+}
+
+/* Renewals and commissioning periods lie over what their option makes: it goes with them. */
+static void keep_options_of_periods(const struct variant *v, bool *keep)
+{
+    for (size_t i = v->n_options; i < v->n; i++)
+        for (size_t k = 0; keep[i] && v->changes[i].option && k < v->n_options; k++)
+            keep[k] = keep[k] || text_equal(v->options[k], v->changes[i].option);
 }
 
 static ohmen_status project(struct figures *f, const struct variant *v, const char *id,
@@ -449,6 +616,7 @@ static ohmen_status project(struct figures *f, const struct variant *v, const ch
     if (status != OHMEN_OK)
         return status;
     keep_makers_of_states(f, v, keep);
+    keep_options_of_periods(v, keep);
     for (size_t i = 0; i < v->n; i++)
         if (keep[i])
             kept[n++] = v->changes[i];
@@ -476,4 +644,18 @@ bool variant_reaches(const struct variant *v, const char *id)
     const struct variant *projected;
     ohmen_status status = variant_project(v->figures, v, id, &projected, NULL);
     return status != OHMEN_OK || projected->n > 0;
+}
+
+double variant_begins(const struct figures *f, const struct variant *v)
+{
+    double last = 0, horizon = horizon_length(f->base->settings);
+    for (size_t i = 0; i < v->n; i++) {
+        const struct change *c = &v->changes[i];
+        bool renewal = c->sort == CHANGE_RENEWAL;
+        if (c->sort != CHANGE_OPTION && !renewal)
+            continue;
+        struct life life = life_of(f, renewal ? c->option : c->name);
+        last = fmax(last, life_renewal(&life, renewal ? c->renewal : 0));
+    }
+    return last < horizon ? last : 0;
 }

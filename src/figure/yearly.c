@@ -1,6 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Hazards over the years: how probable each end is over the horizon, and what the hazard costs
  * in each year. Where nothing changes with time there is one value for all years. */
+#include <math.h>
+
 #include "figure/compile_hazard.h"
 #include "figure/horizon.h"
 #include "figure/span.h"
@@ -24,8 +26,11 @@ static node_id weighted_mean(struct tree *t, size_t end)
         products[y] = graph_op2(g, OP_MULTIPLY, frequency_in(t, y),
                                 t->in_window[s->of_year[y] * t->ends.n + end]);
     }
-    struct span all = {{s->years, s->windows.at}, true, s->years, of_year};
-    return ratio_of_means(b, span_mean(b, &all, products), t->frequency->mean);
+    struct span all = {{s->years, s->windows.at}, true, s->years, of_year, s->from};
+    node_id often = t->frequency->mean;
+    if (s->from > 0)
+        often = span_mean(b, &all, t->frequency->yearly);
+    return ratio_of_means(b, span_mean(b, &all, products), often);
 }
 
 node_id yearly_mean_end(struct tree *t, size_t end)
@@ -85,7 +90,7 @@ void yearly_risks(struct tree *t)
     for (uint32_t y = 0; y < s->years; y++) {
         uint32_t w = s->yearly ? s->of_year[y] : 0;
         of_year[y] = trended ? y : w;
-        bool first = trended || s->windows.at[w].from == y;
+        bool first = trended || floor(s->windows.at[w].from) == y;
         if (first)
             yearly[of_year[y]] = risk_in(t, y, w);
     }

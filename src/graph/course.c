@@ -113,7 +113,7 @@ double course_change_slopes(const double x[COURSE_ARGS], bool fresh, double sinc
 double course_at(const struct course *c, const double x[COURSE_ARGS], double t)
 {
     struct stretch s = course_stretch(c, t);
-    double change = course_change(x, s.fresh, t - s.origin, t - c->born);
+    double change = course_change(x, s.fresh, fmax(t - s.origin, 0), fmax(t - c->born, 0));
     return x[COURSE_STANDING] + change * (1 - x[COURSE_STANDING]);
 }
 
@@ -121,7 +121,7 @@ void course_backward(const struct course *c, const double x[COURSE_ARGS], double
 {
     struct stretch s = course_stretch(c, 0);
     double slope[COURSE_ARGS];
-    double change = course_change_slopes(x, s.fresh, -s.origin, -c->born, slope);
+    double change = course_change_slopes(x, s.fresh, fmax(-s.origin, 0), fmax(-c->born, 0), slope);
     for (int i = 0; i < COURSE_ARGS; i++)
         back[i] += w * (1 - x[COURSE_STANDING]) * slope[i];
     back[COURSE_STANDING] += w * (1 - change);

@@ -149,7 +149,7 @@ const struct years *graph_years_of(const struct graph *g, node_id n);
  *
  * args: standing, rate, ending, left, unreset; standing and left are numbers, the three rates
  * have one dimension, whose inverse is that of the times in `struct course`.
- * The value of the node itself is p(0), where from <= 0 and born <= 0. from <= first; every > 0
+ * The value of the node itself is p(0); what begins later is there as it is at its beginning. from <= first; every > 0
  * where first is finite. */
 struct course {
     double from, first, every; /* first: INFINITY for none */
@@ -158,7 +158,7 @@ struct course {
 };
 node_id graph_course(struct graph *g, const struct course *c, const node_id args[5]);
 const struct course *graph_course_of(const struct graph *g, node_id n);
-/* p(t), for t >= from and born; x: values of the args. */
+/* p(t); before `from` and `born` as at these. x: values of the args. */
 double course_at(const struct course *c, const double x[5], double t);
 
 /* A decision diagram over Boolean variables with independent probabilities (see

@@ -43,6 +43,8 @@ void check_rate(struct checking *c, const struct object *o);
 void check_element(struct checking *c, const struct object *o);
 void check_common_cause(struct checking *c, const struct object *o);
 void check_option(struct checking *c, const struct object *o);
+void check_service(struct checking *c, const struct object *o);      /* life and renewals */
+void check_combinations(struct checking *c, const struct object *o); /* `combine` */
 void check_state(struct checking *c, const struct object *o);
 void check_decision(struct checking *c, const struct object *o);
 

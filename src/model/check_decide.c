@@ -111,6 +111,49 @@ void check_state(struct checking *c, const struct object *o)
         check_survey(c, states, ROW(struct reading_test, s->tests, i), tests->pairs[i].value);
 }
 
+/* --- options --- */
+
+/* Renewals are told apart by their year. */
+#define SHORTEST_RENEWED_LIFE 1.0 /* a */
+
+void check_service(struct checking *c, const struct object *o)
+{
+    const struct option *p = o->data;
+    const struct node *renewed = node_get(o->node, "renewed");
+    if (!p->renewed)
+        return;
+    if (!p->life)
+        diag_add(c->diags, renewed->place,
+                 "an option that is renewed needs \"life\": after which time?");
+    else if (expr_constant(p->life->expr) < SHORTEST_RENEWED_LIFE)
+        diag_add(c->diags, node_get(o->node, "life")->place,
+                 "an option that is renewed lasts 1 a or more");
+    if (!p->invest)
+        diag_add(c->diags, renewed->place,
+                 "an option that is renewed needs \"invest\": what does it cost each time?");
+}
+
+/* An option settles what it and another one say, once: where both do, they say the same. */
+void check_combinations(struct checking *c, const struct object *o)
+{
+    const struct option *p = o->data;
+    const struct node *node = node_get(o->node, "combine");
+    for (size_t i = 0; i < p->combine.n; i++) {
+        const struct pair *row = &node->pairs[i];
+        const struct object *other = model_find(c->model, row->key);
+        const struct node *theirs = other && other->kind == KIND_OPTION
+                                        ? node_get(node_get(other->node, "combine"), o->id)
+                                        : NULL;
+        if (text_equal(row->key, o->id))
+            diag_add(c->diags, row->place, "an option cannot name itself in \"combine\"");
+        else if (theirs && text_compare(row->key, o->id) < 0 && !node_equal(theirs, row->value))
+            diag_add(c->diags, row->place,
+                     "the options \"%s\" and \"%s\" each have a \"combine\" for the other, and "
+                     "these differ",
+                     o->id, row->key);
+    }
+}
+
 /* --- decisions --- */
 
 struct tree_check {

@@ -164,7 +164,7 @@ static bool dim_of_name(void *ctx, const struct expr *e, struct place at, struct
 
 /* --- fields --- */
 
-static const struct dim *expected_dim(enum field_dim d)
+const struct dim *field_dimension(enum field_dim d)
 {
     switch (d) {
     case NUMBER:
@@ -180,7 +180,7 @@ static const struct dim *expected_dim(enum field_dim d)
     return NULL;
 }
 
-static const char *expected_words(enum field_dim d)
+const char *field_dimension_words(enum field_dim d)
 {
     switch (d) {
     case NUMBER: return "a pure number";
@@ -244,10 +244,11 @@ static void check_field(struct quantities_walk *w, const struct visit *v)
     } else if (!check_own(w->c, w->object, q, at, w->outcomes > 0)) {
         return;
     }
-    const struct dim *want = expected_dim(v->field->dim);
+    const struct dim *want = field_dimension(v->field->dim);
     if (want && !dim_equal(*want, q->dim))
-        diag_add(w->c->diags, at, "expected %s%s%s%s, found %s", expected_words(v->field->dim),
-                 v->key ? " for \"" : "", v->key ? v->key : "", v->key ? "\"" : "",
+        diag_add(w->c->diags, at, "expected %s%s%s%s, found %s",
+                 field_dimension_words(v->field->dim), v->key ? " for \"" : "",
+                 v->key ? v->key : "", v->key ? "\"" : "",
                  dim_words(w->c->arena, &w->c->model->units, q->dim));
     if ((v->field->flags & CERTAIN) && !check_is_certain(w->c, q))
         diag_add(w->c->diags, at, "a certain number is needed here, but a name in it is uncertain");

@@ -162,6 +162,8 @@ void check_option(struct checking *c, const struct object *o)
     check_other_options(c, o, &p->excludes, "excludes");
     check_other_options(c, o, &p->requires, "requires");
     check_contradictions(c, o);
+    check_service(c, o);
+    check_combinations(c, o);
     for (size_t i = 0; i < p->excludes.n; i++)
         for (size_t k = 0; k < p->requires.n; k++)
             if (text_equal(p->excludes.at[i], p->requires.at[k]))

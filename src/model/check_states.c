@@ -13,6 +13,14 @@ struct state_check {
     struct diags *diags;
 };
 
+/* In each state the commissioning period of the option must leave a register without fault too. */
+static void lay_early_over(struct state_check *s, const struct model *m)
+{
+    struct model_change early = model_early_change(s->arena, s->base, s->option);
+    if (early.node)
+        model_change(s->arena, m, 1, &early, s->diags);
+}
+
 static const struct model *under_changes(struct state_check *s, size_t n,
                                          const struct model_change *changes)
 {
@@ -22,7 +30,10 @@ static const struct model *under_changes(struct state_check *s, size_t n,
         all[k++] = model_option_change(s->base, s->option);
     for (size_t i = 0; i < n; i++)
         all[k++] = changes[i];
-    return model_change(s->arena, s->base, k, all, s->diags);
+    const struct model *m = model_change(s->arena, s->base, k, all, s->diags);
+    if (m && s->option)
+        lay_early_over(s, m);
+    return m;
 }
 
 /* A hazard that there is only in one state, or an outcome of that sort, would stand in no list:

@@ -54,6 +54,11 @@ enum field_dim {
     INTEREST /* 1/time, more than -1 per a */
 };
 
+/* The dimension; NULL for ANY. */
+const struct dim *field_dimension(enum field_dim d);
+/* The same for messages: "a time such as 2 h". */
+const char *field_dimension_words(enum field_dim d);
+
 enum field_flag {
     REQUIRED = 1 << 0,
     CERTAIN = 1 << 1,  /* a quantity: no distribution, and its names must be certain too */

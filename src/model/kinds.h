@@ -68,6 +68,8 @@ struct criteria {
     struct money_criteria *money;
     struct people_criteria *people;
 };
+/* When what is paid in a year counts as paid. */
+enum yearly_amounts { YEARLY_MID_YEAR, YEARLY_END_OF_YEAR };
 struct register_settings {
     const char *title, *currency, *perspective, *note;
     int64_t prices; /* year of the prices */
@@ -76,6 +78,7 @@ struct register_settings {
     struct names counts;
     int64_t customers_served;
     bool steady; /* figures are long-run averages */
+    int yearly_amounts; /* enum yearly_amounts, or -1: mid-year */
     struct rows perspectives; /* of struct names */
     struct criteria *criteria;
 };
@@ -288,7 +291,7 @@ struct plan {
     struct names must, options;
 };
 
-extern const char *const scope_words[],
+extern const char *const yearly_amounts[], *const scope_words[],
     *const source_kinds[], *const element_kinds[], *const prior_forms[],
                                                        *const prior_solutions[],
                                                            *const demand_priors[],

@@ -126,6 +126,28 @@ static void bind_all(struct model *m, const struct model_source *sources, size_t
     }
 }
 
+/* The commissioning period of an option leaves a register without fault too. */
+static void check_early(struct model *m, const struct model *under, const char *option,
+                        struct diags *d)
+{
+    struct model_change early = model_early_change(m->arena, m, option);
+    if (early.node)
+        model_change(m->arena, under, 1, &early, d);
+}
+
+/* And so does an option with each that it settles something with; one of the two tells. */
+static void check_combined(struct model *m, const struct object *o, struct diags *d)
+{
+    const struct option *p = o->data;
+    for (size_t i = 0; i < p->combine.n; i++) {
+        const char *pair[] = {o->id, p->combine.keys[i]};
+        const struct option *other = model_get(m, KIND_OPTION, pair[1]);
+        bool told = text_compare(pair[1], pair[0]) < 0 && check_has_row(&other->combine, o->id);
+        if (!told)
+            model_variant(m->arena, m, 2, pair, d);
+    }
+}
+
 /* Each option alone must leave a register without fault, in every state. */
 static void check_options(struct model *m, struct diags *d)
 {
@@ -138,6 +160,9 @@ static void check_options(struct model *m, struct diags *d)
         const struct model *under = model_variant(m->arena, m, 1, &id, d);
         if (under && states)
             check_states(m->arena, m, under, id, d);
+        if (under)
+            check_early(m, under, id, d);
+        check_combined(m, options->at[i], d);
     }
 }
 

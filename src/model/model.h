@@ -63,11 +63,16 @@ struct model_change {
     const char *name;        /* "FIT-87B", "T2-OUT=a-out" */
     const struct node *node; /* bound; NULL: changes nothing */
     struct place place;      /* of contradictions with a change that stands before it */
+    const char *option;      /* of an option: its id; else NULL */
+    const char *pair[2];     /* of what two options settle: their ids; else NULL */
 };
 
 /* A model over `base` with the changes applied, in this order (which has no meaning: changes
- * that contradict each other are refused). Adds diagnostics (at the places in the changes) and
- * returns NULL when a result is wrong or two changes contradict. n may be 0: `base` itself. */
+ * that contradict each other are refused). What two options of them settle with each other by
+ * `combine` stands instead of what they say there, and is applied too. An element that options
+ * add, and that has no `since`, is new on the day on which the first of them comes into service.
+ * Adds diagnostics (at the places in the changes) and returns NULL when a result is wrong or two
+ * changes contradict. n may be 0: `base` itself. */
 const struct model *model_change(struct arena *a, const struct model *base, size_t n,
                                  const struct model_change *changes, struct diags *d);
 
@@ -91,7 +96,17 @@ void model_varying(struct arena *a, const struct model *m, struct object_list *o
 const struct model *model_variant(struct arena *a, const struct model *base, size_t n,
                                   const char *const *options, struct diags *d);
 
-/* Do two options contradict? The path ("hazards/H-1/response/x/in"), or NULL. */
+/* What settles the contradictions of two options, and what holds only with both: the `combine` of
+ * either for the other, or NULL. */
+const struct node *model_combination(const struct model *base, const char *option_p,
+                                     const char *option_q);
+
+/* The change of the commissioning period of an option, to be laid over what all options make of
+ * the register; named "FIT-87B:early". A node of NULL where it has none. */
+struct model_change model_early_change(struct arena *a, const struct model *base,
+                                       const char *option);
+
+/* Do two options contradict, also when what settles them is taken into account? The path ("hazards/H-1/response/x/in"), or NULL. */
 const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
                                 const char *option_q);
 

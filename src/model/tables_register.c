@@ -3,6 +3,7 @@
  * sources, sites, groups of people, named values, plans. */
 #include "model/tables.h"
 
+const char *const yearly_amounts[] = {"mid-year", "end-of-year", NULL};
 const char *const scope_words[] = {"hazard", "site", "register", NULL};
 const char *const source_kinds[] = {"publication", "standard",   "test-record",
                                     "inspection",  "statistics", "manufacturer",
@@ -69,6 +70,9 @@ static const struct field register_fields[] = {
       "Customers that the network serves", .low = 0, .high = 1000000000000),
     F(struct register_settings, steady, "steady", YES,
       "Are figures long-run averages, instead of those of each year of the horizon?"),
+    F(struct register_settings, yearly_amounts, "yearly-amounts", WORD,
+      "When damage and running cost of a year count as paid; mid-year where it is left out",
+      .words = yearly_amounts),
     F(struct register_settings, sustained_over, "sustained-over", QUANTITY,
       "Interruptions longer than this count as sustained (IEEE 1366)", .dim = TIME,
       .flags = CERTAIN | NOT_NEGATIVE | CONSTANT),

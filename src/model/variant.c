@@ -10,20 +10,34 @@
 
 #include "doc/patch.h"
 #include "model/check.h"
+#include "model/combination.h"
 
 struct model_change model_option_change(const struct model *base, const char *option)
 {
     const struct object *o = model_find(base, option);
     const struct option *data = o->data;
-    return (struct model_change){"option", option, data->change, o->node->place};
+    return (struct model_change){"option", option, data->change, o->node->place, o->id, {0}};
+}
+
+struct model_change model_early_change(struct arena *a, const struct model *base,
+                                       const char *option)
+{
+    const struct object *o = model_find(base, option);
+    const struct early *early = ((const struct option *)o->data)->early;
+    return (struct model_change){"commissioning period",
+                                 arena_printf(a, "%s:early", o->id),
+                                 early ? early->change : NULL,
+                                 early ? early->change->place : o->node->place,
+                                 NULL,
+                                 {0}};
 }
 
 struct model_change model_state_change(struct arena *a, const struct object *state, size_t value)
 {
     const struct state *s = state->data;
     const char *key = s->varies.keys[value];
-    struct model_change c = {"state", arena_printf(a, "%s=%s", state->id, key), NULL,
-                             state->node->place};
+    struct model_change c = {
+        "state", arena_printf(a, "%s=%s", state->id, key), NULL, state->node->place, NULL, {0}};
     for (size_t i = 0; i < s->when.n; i++)
         if (text_equal(s->when.keys[i], key)) {
             c.node = ((const struct node *const *)s->when.at)[i];
@@ -66,21 +80,14 @@ void model_varying(struct arena *a, const struct model *m, struct object_list *o
         qsort(out->at, out->n, sizeof *out->at, by_id);
 }
 
-static const char *contradiction(struct arena *a, const struct model *base, const struct node *p,
-                                 const struct node *q)
+const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
+                                const char *option_q)
 {
     struct diags quiet;
     diags_init(&quiet, a);
     struct binding b = {.arena = a, .units = &base->units, .diags = &quiet};
     struct patch_rules rules = bind_patch_rules(&b);
-    return p && q ? patch_contradiction(a, &rules, p, q) : NULL;
-}
-
-const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
-                                const char *option_q)
-{
-    return contradiction(a, base, model_option_change(base, option_p).node,
-                         model_option_change(base, option_q).node);
+    return combination_contradiction(a, base, &rules, option_p, option_q);
 }
 
 struct applying {
@@ -217,18 +224,98 @@ static void report_contradiction(struct applying *ap, const struct model_change 
                  p->word, p->name, q->word, q->name, path);
 }
 
-static bool refuse_contradictions(struct applying *ap, size_t n, const struct model_change *changes)
+/* Of two options also where a third one settles what they say. */
+static const char *contradiction(struct applying *ap, const struct model_change *p,
+                                 const struct model_change *q)
 {
-    for (size_t i = 0; i < n; i++)
+    if (p->option && q->option)
+        return combination_contradiction(ap->arena, ap->variant->below, &ap->rules, p->option,
+                                         q->option);
+    return p->node && q->node ? patch_contradiction(ap->arena, &ap->rules, p->node, q->node) : NULL;
+}
+
+static bool refuse_contradictions(struct applying *ap, const struct change_list *changes)
+{
+    for (size_t i = 0; i < changes->n; i++)
         for (size_t k = 0; k < i; k++) {
-            const char *path =
-                contradiction(ap->arena, ap->variant->below, changes[k].node, changes[i].node);
+            const char *path = contradiction(ap, &changes->at[k], &changes->at[i]);
             if (!path)
                 continue;
-            report_contradiction(ap, &changes[k], &changes[i], path);
+            report_contradiction(ap, &changes->at[k], &changes->at[i], path);
             return false;
         }
     return true;
+}
+
+/* --- what is new --- */
+
+static day in_service(const struct model *base, const char *option)
+{
+    return ((const struct option *)model_get(base, KIND_OPTION, option))->in_service;
+}
+
+static day later(day p, day q)
+{
+    return p > q ? p : q; /* DAY_NONE is the least */
+}
+
+/* From when on a change adds what it adds: DAY_NONE for the start of the horizon. */
+static day begins(const struct model *base, const struct model_change *c)
+{
+    return c->option ? in_service(base, c->option)
+                     : later(in_service(base, c->pair[0]), in_service(base, c->pair[1]));
+}
+
+/* The first day on which one of the changes of options that add an element holds; DAY_NONE where
+ * one does from the start of the horizon. */
+static day first_service(struct applying *ap, const char *id, const struct change_list *changes)
+{
+    day first = DAY_NONE;
+    bool found = false;
+    for (size_t i = 0; i < changes->n; i++) {
+        const struct model_change *c = &changes->at[i];
+        const struct node *elements = node_get(c->node, kinds[KIND_ELEMENT].section);
+        if ((!c->option && !c->pair[0]) || !node_get(elements, id))
+            continue;
+        day d = begins(ap->variant->below, c);
+        first = !found || d < first ? d : first;
+        found = true;
+    }
+    return first;
+}
+
+static bool is_before(const struct node *map, const char *key, const char *date)
+{
+    const struct node *n = node_get(map, key);
+    return n && text_compare(n->text, date) < 0;
+}
+
+/* An element that options add is new when they come into service, unless it says that it was
+ * there before. */
+static void date_new_element(struct applying *ap, struct strmap_pair *p,
+                             const struct change_list *changes)
+{
+    char date[DATE_TEXT];
+    const struct node *node = p->value;
+    const struct kind_info *kind = strmap_get(&ap->kind_of, p->key);
+    if (!node || kind != &kinds[KIND_ELEMENT] || node_get(node, "since") ||
+        model_find(ap->variant->below, p->key))
+        return;
+    day first = first_service(ap, p->key, changes);
+    if (first == DAY_NONE || is_before(node, "when-known", date_write(date, first)) ||
+        is_before(node_get(node, "test"), "last", date))
+        return;
+    struct node *dated = node_copy(ap->arena, node);
+    node_set(ap->arena, dated, "since",
+             node_scalar(ap->arena, FORM_TEXT, arena_str(ap->arena, date), node->place));
+    node_sort(dated);
+    p->value = dated;
+}
+
+static void date_new_elements(struct applying *ap, const struct change_list *changes)
+{
+    for (size_t i = 0; i < ap->nodes.n; i++)
+        date_new_element(ap, &ap->nodes.at[i], changes);
 }
 
 const struct model *model_change(struct arena *a, const struct model *base, size_t n,
@@ -246,10 +333,13 @@ const struct model *model_change(struct arena *a, const struct model *base, size
                           .binding = {.arena = a, .units = &m->units, .diags = d},
                           .diags = d};
     ap.rules = bind_patch_rules(&ap.binding);
-    if (!refuse_contradictions(&ap, n, changes))
+    struct change_list all = {0};
+    combination_settle(a, base, &ap.rules, n, changes, &all);
+    if (!refuse_contradictions(&ap, &all))
         return NULL;
-    for (size_t i = 0; i < n; i++)
-        apply_change(&ap, changes[i].node);
+    for (size_t i = 0; i < all.n; i++)
+        apply_change(&ap, all.at[i].node);
+    date_new_elements(&ap, &all);
     if (d->count == errors)
         bind_results(&ap);
     if (d->count == errors)

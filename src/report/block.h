@@ -60,6 +60,7 @@ struct column {
     bool right;        /* text to the right (numbers always align on the point) */
     unsigned keep;     /* columns with a smaller number are dropped first when the page is
                           too narrow; 0 may never be dropped. JSON and CSV have them all */
+    bool data;         /* only in JSON and CSV: what the page says otherwise, by a mark */
 };
 
 struct row ARRAY_BODY(struct cell);

@@ -43,6 +43,8 @@ static void put_marked(struct html *h, const char *text, const char *mark)
 
 static void put_head(struct html *h, const struct table_column *c)
 {
+    if (c->data)
+        return;
     if (!*c->head && !*c->unit && !c->period) {
         html_raw(h, "<td></td>");
         return;
@@ -123,7 +125,7 @@ static void put_cell(struct html *h, const struct table_column *c, const struct 
 static size_t naming_column(const struct table_shape *t)
 {
     for (size_t j = 0; j < t->n_columns; j++)
-        if (!t->columns[j].number && *t->columns[j].head)
+        if (!t->columns[j].number && !t->columns[j].data && *t->columns[j].head)
             return j;
     return t->n_columns;
 }
@@ -133,6 +135,8 @@ static void put_row(struct html *h, const struct table_shape *t, size_t i, const
     size_t naming = naming_column(t);
     html_raw(h, "<tr>");
     for (size_t j = 0; j < t->n_columns; j++) {
+        if (t->columns[j].data)
+            continue;
         if (j == 0 && sign)
             text_printf(h->out, "<td>%s</td>", sign);
         else
@@ -144,7 +148,10 @@ static void put_row(struct html *h, const struct table_shape *t, size_t i, const
 
 static void put_none(struct html *h, const struct table_shape *t)
 {
-    text_printf(h->out, "<tr><td colspan=\"%zu\">(none)</td></tr>\n", t->n_columns);
+    size_t n = 0;
+    for (size_t j = 0; j < t->n_columns; j++)
+        n += !t->columns[j].data;
+    text_printf(h->out, "<tr><td colspan=\"%zu\">(none)</td></tr>\n", n);
 }
 
 static void put_caption(struct html *h, const char *element, const char *caption)
@@ -170,6 +177,8 @@ static bool fits_paper(const struct table_shape *t)
     for (size_t j = 0; j < t->n_columns; j++) {
         const struct table_column *c = &t->columns[j];
         bool gives = !c->number && c->natural > SHORT_WORDS;
+        if (c->data)
+            continue;
         sum += (gives ? SHORT_WORDS : c->natural) + c->period + TABLE_GUTTER;
     }
     return sum <= PAPER_WIDTH;

@@ -12,11 +12,11 @@
 #include "report/number.h"
 
 enum {
-    LEAST_TEXT = 16,    /* a text column is not made narrower while others can go */
-    LONGEST_WORD = 24,  /* words up to this are whole while others can go */
-    BROKEN_WORD = 8,    /* the last resort */
-    EASY_TEXT = 28,     /* a text column this wide reads well beside return periods */
-    EASY_HEAD = 14      /* a head may widen a column of numbers so far */
+    LEAST_TEXT = 16,   /* a text column is not made narrower while others can go */
+    LONGEST_WORD = 24, /* words up to this are whole while others can go */
+    BROKEN_WORD = 8,   /* the last resort */
+    EASY_TEXT = 28,    /* a text column this wide reads well beside return periods */
+    EASY_HEAD = 14     /* a head may widen a column of numbers so far */
 };
 
 static size_t larger(size_t a, size_t b)
@@ -84,8 +84,9 @@ static void show_value(const struct page *p, struct shown *s, const struct cell 
             show_number(p, s, s->text);
         return;
     }
-    show_number(p, s, number_scaled(digits, c->number,
-                                    style == STYLE_MONEY && shift ? STYLE_PLAIN : style, shift));
+    show_number(p, s,
+                number_scaled(digits, c->number,
+                              style == STYLE_MONEY && shift ? STYLE_PLAIN : style, shift));
     if (style == STYLE_FREQUENCY && c->number >= 0)
         s->period = arena_str(p->arena, return_period_text(period, c->number));
 }
@@ -94,8 +95,8 @@ static void show_value(const struct page *p, struct shown *s, const struct cell 
 static struct shown show_cell(const struct page *p, const struct cell *c,
                               const struct column *column, bool number, int shift)
 {
-    struct shown s = {.left = "", .right = "", .text = "", .period = "",
-                      .mark = page_clean(p, c->mark)};
+    struct shown s = {
+        .left = "", .right = "", .text = "", .period = "", .mark = page_clean(p, c->mark)};
     if (c->type == CELL_NUMBER || c->type == CELL_COUNT)
         show_value(p, &s, c, column->style, shift);
     else if (c->type != CELL_EMPTY)
@@ -125,6 +126,8 @@ static void show_column(const struct page *p, struct table_shape *t, size_t j)
     to->unit = to->number || c->style != STYLE_PERCENT ? shown_unit(p, c, shift) : "";
     to->to_right = to->number || c->right;
     to->keep = c->keep;
+    to->data = c->data;
+    to->dropped = c->data;
     for (size_t i = 0; i < t->n_rows; i++)
         t->cells[i * t->n_columns + j] =
             show_cell(p, cell_at(t->block, i, j), c, to->number, shift);

@@ -25,6 +25,7 @@ struct table_column {
     bool number;   /* numbers on the point, else text */
     bool to_right; /* head and text to the right */
     bool dropped;
+    bool data;           /* never on a page */
     unsigned keep;
     size_t left, right; /* columns up to the point; behind it, with mark */
     size_t least, natural, width;

@@ -136,7 +136,7 @@ static void write_left_out(struct page *p, const struct table_shape *t)
     struct text names;
     text_init(&names, p->arena);
     for (size_t j = 0; j < t->n_columns; j++)
-        if (t->columns[j].dropped)
+        if (t->columns[j].dropped && !t->columns[j].data)
             text_printf(&names, "%s%s", names.n ? ", " : "", t->columns[j].head);
     if (!names.n)
         return;
@@ -151,16 +151,19 @@ static void write_records(struct page *p, const struct table_shape *t)
     struct pair *pairs = NEW_ARRAY(p->arena, t->n_columns, struct pair);
     for (size_t i = 0; i < t->n_rows; i++) {
         const struct row *row = &t->block->rows.at[i];
+        size_t n = 0;
         for (size_t j = 0; j < t->n_columns; j++) {
             const struct cell *c = j < row->n ? &row->at[j] : &empty;
             const struct column *column = &t->block->columns.at[j];
-            pairs[j].name = t->columns[j].head;
-            pairs[j].value = cell_words(p, c, column->style, column->unit);
-            pairs[j].mark = page_clean(p, c->mark);
+            if (column->data)
+                continue;
+            pairs[n].name = t->columns[j].head;
+            pairs[n].value = cell_words(p, c, column->style, column->unit);
+            pairs[n++].mark = page_clean(p, c->mark);
         }
         if (i)
             page_blank(p);
-        page_pairs(p, pairs, t->n_columns);
+        page_pairs(p, pairs, n);
     }
 }
 

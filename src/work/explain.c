@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The derivation of a figure: formula by formula, down to inputs with their source. And of a value
- * at which a decision turns, which is no figure of the graph but made of some. */
+/* The derivation of a figure: formula by formula, down to inputs with their source. And of what is
+ * worked out from figures and is none of the graph: values at which a decision turns, and what it
+ * leans on. */
 #include "decide/interval.h"
 #include "work/work.h"
 
@@ -71,22 +72,21 @@ static void explain_row(struct job *j, struct block *b, figure_id id, unsigned l
     row_text(r, row, dim_unit(j->arena, &j->model->units, figure_dim(j->figures, id)));
 }
 
-/* A value at which a decision turns is no figure of the graph. */
-static void turn_row(struct job *j, struct block *b, const struct turn *t)
+static void consumed_row(struct job *j, struct block *b, const struct consumed *c)
 {
     struct report *r = j->report;
     struct row *row = block_row(r, b);
     char exact[32];
     row_count(r, row, 1);
-    row_text(r, row, t->name);
-    row_text(r, row, figure_words(j, t->input, t->at));
-    row_text(r, row, turn_formula(j, t));
+    row_text(r, row, c->name);
+    row_text(r, row, c->words);
+    row_text(r, row, c->formula);
     row_text(r, row, "");
-    row_text(r, row, text_double(exact, t->at));
-    row_text(r, row, dim_unit(j->arena, &j->model->units, figure_dim(j->figures, t->input)));
+    row_text(r, row, text_double(exact, c->value));
+    row_text(r, row, dim_unit(j->arena, &j->model->units, c->dim));
 }
 
-static void explain_table(struct explaining *x, const struct turn *turn)
+static void explain_table(struct explaining *x, const struct consumed *first)
 {
     struct report *r = x->job->report;
     struct block *b = report_table(r, "derivation", "Derivation");
@@ -98,8 +98,8 @@ static void explain_table(struct explaining *x, const struct turn *turn)
     block_column(r, b, "source", "Source", "", STYLE_PLAIN)->keep = 4;
     block_column(r, b, "exact", "Exact", "", STYLE_PLAIN)->keep = 2;
     block_column(r, b, "unit", "Unit", "", STYLE_PLAIN)->keep = 2;
-    if (turn)
-        turn_row(x->job, b, turn);
+    if (first)
+        consumed_row(x->job, b, first);
     for (size_t i = 0; i < x->todo.n; i++)
         explain_row(x->job, b, x->todo.at[i], x->levels.at[i]);
 }
@@ -177,22 +177,38 @@ struct explain_request {
     unsigned depth;
 };
 
-/* A value at which a decision turns, and the figures that it is made of. */
-static ohmen_status explain_turn(struct job *j, const struct explain_request *q, ohmen_error *e)
+/* The derivation of what is worked out from figures. */
+static void derive(struct job *j, const struct explain_request *q, const struct consumed *c)
 {
     struct explaining x = {.job = j, .depth = q->depth};
-    struct figure_ids inputs = {0};
+    for (size_t i = 0; i < c->inputs.n && q->depth != 1; i++)
+        add(&x, c->inputs.at[i], 2);
+    collect(&x);
+    explain_table(&x, c);
+}
+
+static ohmen_status explain_turn(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
     struct turn turn;
     ohmen_status status = turn_find(j->figures, q->figure, &turn, e);
     if (status != OHMEN_OK)
         return status;
+    struct consumed c = turn_consumed(j, &turn);
     part_turn_head(j, &turn);
-    turn_inputs_of_formula(j, &turn, &inputs);
-    for (size_t i = 0; i < inputs.n && q->depth != 1; i++)
-        add(&x, inputs.at[i], 2);
-    collect(&x);
-    explain_table(&x, &turn);
+    derive(j, q, &c);
     part_turn_method(j, &turn);
+    return OHMEN_OK;
+}
+
+static ohmen_status explain_lean(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct lean lean;
+    ohmen_status status = lean_find(j->figures, q->figure, &lean, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct consumed c = lean_consumed(j, &lean);
+    part_lean_head(j, &lean);
+    derive(j, q, &c);
     return OHMEN_OK;
 }
 
@@ -203,6 +219,8 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     ohmen_status status = job_load_figures(j, e);
     if (status == OHMEN_OK && turn_is_named(q->figure))
         return explain_turn(j, q, e);
+    if (status == OHMEN_OK && lean_is_named(q->figure))
+        return explain_lean(j, q, e);
     bool over_cycles = interval_is_named(q->figure);
     if (status == OHMEN_OK && over_cycles)
         status = interval_find(j->figures, q->figure, &j->figures, &id, e);

@@ -1,26 +1,36 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Hazards as a table, and their grid. */
-#include "work/work.h"
+#include "work/filter.h"
 
-static ohmen_status compute_hazards(struct job *j, struct hazards *h, ohmen_error *e)
+/* Of figures that are loaded. */
+static ohmen_status evaluate_hazards(struct job *j, struct hazards *h, ohmen_error *e)
 {
-    ohmen_status status = job_load_figures(j, e);
-    if (status == OHMEN_OK)
-        status = job_compile_hazards(j, h, e);
+    ohmen_status status = job_compile_hazards(j, h, e);
     if (status == OHMEN_OK)
         status = figures_evaluate(j->figures, e);
     return status;
 }
 
+static ohmen_status compute_hazards(struct job *j, struct hazards *h, ohmen_error *e)
+{
+    ohmen_status status = job_load_figures(j, e);
+    return status == OHMEN_OK ? evaluate_hazards(j, h, e) : status;
+}
+
 static ohmen_status run_hazards(struct job *j, void *ctx, ohmen_error *e)
 {
     struct hazards h = {0};
+    struct filter *f = NULL;
     (void)ctx;
-    ohmen_status status = compute_hazards(j, &h, e);
+    ohmen_status status = job_load_figures(j, e);
+    if (status == OHMEN_OK)
+        status = filter_read(j, KIND_HAZARD, hazard_columns, N_HAZARD_COLUMNS, &f, e);
+    if (status == OHMEN_OK)
+        status = evaluate_hazards(j, &h, e);
     if (status != OHMEN_OK)
         return status;
     part_not_computed(j);
-    part_hazards(j, &h);
+    part_hazards_where(j, &h, f);
     report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
     return OHMEN_OK;
 }

@@ -273,17 +273,30 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e)
 }
 
 /* Sites do not contain themselves. */
-bool job_at_site(const struct job *j, const char *site)
+bool site_is_in(const struct model *m, const char *site, const char *whole)
 {
-    if (!j->query.site)
-        return true;
     while (site) {
-        if (text_equal(site, j->query.site))
+        if (text_equal(site, whole))
             return true;
-        const struct site *s = model_get(j->model, KIND_SITE, site);
+        const struct site *s = model_get(m, KIND_SITE, site);
         site = s ? s->in : NULL;
     }
     return false;
+}
+
+bool job_at_site(const struct job *j, const char *site)
+{
+    return !j->query.site || site_is_in(j->model, site, j->query.site);
+}
+
+bool job_has_at_site(const struct job *j, const struct object *o)
+{
+    const struct node *site = node_get(o->node, "site");
+    if (o->kind == KIND_SITE)
+        return job_at_site(j, o->id);
+    if (!table_field(kinds[o->kind].table, "site"))
+        return true;
+    return job_at_site(j, site ? site->text : NULL);
 }
 
 ohmen_status job_check_site(struct job *j, ohmen_error *e)

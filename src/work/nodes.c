@@ -52,6 +52,13 @@ static void write_brief(struct text *t, const struct node *n, bool inside)
         text_byte(t, map ? '}' : ']');
 }
 
+const char *brief(struct arena *a, const char *text, size_t most)
+{
+    if (utf8_columns(text) <= most)
+        return text;
+    return arena_printf(a, "%.*s...", (int)utf8_prefix(text, most - 3), text);
+}
+
 const char *node_says(struct arena *a, const struct node *n, size_t most)
 {
     struct text t;
@@ -59,9 +66,7 @@ const char *node_says(struct arena *a, const struct node *n, size_t most)
     write_brief(&t, n, false);
     if (n->type != NODE_SCALAR && n->n == 0)
         text_add(&t, "none");
-    if (utf8_columns(text_str(&t)) <= most)
-        return text_str(&t);
-    return arena_printf(a, "%.*s...", (int)utf8_prefix(text_str(&t), most - 3), text_str(&t));
+    return brief(a, text_str(&t), most);
 }
 
 /* Is the document form of the node a short form: no map of the table's own keys? */

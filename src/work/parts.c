@@ -7,7 +7,7 @@
 #include "base/utf8.h"
 #include "doc/json.h"
 #include "figure/horizon.h"
-#include "work/work.h"
+#include "work/filter.h"
 
 const char *object_name(const struct object *o)
 {
@@ -143,7 +143,7 @@ static void number_cell(struct job *j, struct row *row, figure_id id)
     row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
 }
 
-static void hazard_row(struct job *j, struct block *b, size_t rank, const struct compiled *c)
+static struct row *hazard_row(struct job *j, struct block *b, size_t rank, const struct compiled *c)
 {
     const struct hazard_exports *x = exports(c);
     struct row *row = block_row(j->report, b);
@@ -156,13 +156,45 @@ static void hazard_row(struct job *j, struct block *b, size_t rank, const struct
     number_cell(j, row, x->risk);
     if (*criteria_word(j, 0))
         row_text(j->report, row, criteria_word(j, risk_of(j, c)));
+    return row;
 }
 
-void part_hazards(struct job *j, const struct hazards *h)
+const struct filter_column hazard_columns[N_HAZARD_COLUMNS] = {
+    [HAZARD_RANK] = {"rank", FIELD_COUNT, NUMBER},
+    [HAZARD_FREQUENCY] = {"frequency", FIELD_QUANTITY, FREQUENCY},
+    [HAZARD_DAMAGING] = {"damaging", FIELD_QUANTITY, FREQUENCY},
+    [HAZARD_DAMAGE] = {"damage", FIELD_QUANTITY, MONEY},
+    [HAZARD_RISK] = {"risk", FIELD_QUANTITY, MONEY_RATE},
+    [HAZARD_CRITERION] = {"criterion", FIELD_TEXT, ANY},
+};
+
+static struct filter_value computed_number(double value, enum field_dim d)
+{
+    return (struct filter_value){
+        .given = true, .number = true, .value = value, .dim = *field_dimension(d)};
+}
+
+static struct filter_item hazard_item(struct job *j, const struct compiled *c, size_t index)
+{
+    const struct hazard_exports *x = exports(c);
+    const figure_id of[N_HAZARD_COLUMNS] = {[HAZARD_FREQUENCY] = x->frequency,
+                                            [HAZARD_DAMAGING] = x->damaging,
+                                            [HAZARD_DAMAGE] = x->damage,
+                                            [HAZARD_RISK] = x->risk};
+    struct filter_value *v = NEW_ARRAY(j->arena, N_HAZARD_COLUMNS, struct filter_value);
+    v[HAZARD_RANK] = computed_number((double)(index + 1), NUMBER);
+    for (size_t i = HAZARD_FREQUENCY; i <= HAZARD_RISK; i++)
+        v[i] = computed_number(figure_value(j->figures, of[i]), hazard_columns[i].dim);
+    const char *word = criteria_word(j, v[HAZARD_RISK].value);
+    v[HAZARD_CRITERION] = (struct filter_value){.given = *word != 0, .text = word};
+    return (struct filter_item){.object = c->object, .computed = v, .index = index};
+}
+
+static struct block *hazards_table(struct job *j, const char *title)
 {
     struct report *r = j->report;
     const char *currency = j->model->settings->currency;
-    struct block *b = report_table(r, "hazards", "Hazards by risk");
+    struct block *b = report_table(r, "hazards", title);
     block_column(r, b, "rank", "Rank", "", STYLE_PLAIN)->keep = 5;
     block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
     block_column(r, b, "name", "What happens", "", STYLE_PLAIN)->keep = 3;
@@ -172,9 +204,53 @@ void part_hazards(struct job *j, const struct hazards *h)
     block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
     if (*criteria_word(j, 0))
         block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 2;
+    return b;
+}
+
+/* Fields that the query asks for, behind the figures. */
+enum { KEEP_ASKED = 6, ASKED_COLUMNS = 100 };
+
+static void asked_columns(struct job *j, struct block *b, const struct filter *f)
+{
+    const struct filter_field *x;
+    for (size_t i = 0; f && (x = filter_asked(f, i)); i++) {
+        const char *key = filter_column_key(j->arena, x->path);
+        block_column(j->report, b, key, x->path, "", STYLE_PLAIN)->keep = KEEP_ASKED;
+    }
+}
+
+static void asked_cells(struct job *j, struct row *row, const struct filter *f,
+                        const struct filter_item *item)
+{
+    const struct filter_field *x;
+    for (size_t i = 0; f && (x = filter_asked(f, i)); i++) {
+        const char *text = filter_value_of(j, x, item).text;
+        row_text(j->report, row, text ? brief(j->arena, text, ASKED_COLUMNS) : NULL);
+    }
+}
+
+void part_hazards_where(struct job *j, const struct hazards *h, struct filter *f)
+{
+    struct filter_items items = {0};
+    bool by_another = f && filter_orders(f);
+    struct block *b = hazards_table(j, by_another ? "Hazards" : "Hazards by risk");
+    asked_columns(j, b, f);
     size_t *order = by_risk(j, h);
     for (size_t i = 0; i < h->n; i++)
-        hazard_row(j, b, i + 1, h->at[order[i]]);
+        *array_push(j->arena, &items) = hazard_item(j, h->at[order[i]], i);
+    if (f)
+        filter_apply(f, &items);
+    for (size_t i = 0; i < items.n; i++) {
+        size_t rank = items.at[i].index;
+        asked_cells(j, hazard_row(j, b, rank + 1, h->at[order[rank]]), f, &items.at[i]);
+    }
+    if (f)
+        part_filter(j, f);
+}
+
+void part_hazards(struct job *j, const struct hazards *h)
+{
+    part_hazards_where(j, h, NULL);
 }
 
 void part_criteria_lines(struct job *j, struct block *grid)

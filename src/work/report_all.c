@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The whole register as one document: title block, summary, hazards, grid, protection,
- * decisions, inputs with their sources, what was left out, cautions. */
+ * decisions, inputs with their sources, what is missing, what was left out, cautions. */
 #include "work/protection.h"
 
 struct whole {
@@ -189,6 +189,7 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
     part_decisions(j, &w);
     part_inputs(j);
     part_sources(j);
+    part_gaps_counted(j);
     report_heading(j->report, 2, "What is left out, and cautions");
     part_linearity(j, &w.hazards);
     part_unused(j);

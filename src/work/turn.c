@@ -20,14 +20,6 @@ static const char *then_wins(const struct alternative *x)
     return x->n == 0 ? "do nothing" : x->name;
 }
 
-/* What the figure belongs to, by its name; the register's own settings by what they are. */
-static const char *what_it_is(const struct job *j, figure_id id)
-{
-    const struct figure *g = figure_at(j->figures, id);
-    const struct object *o = j->figures->units.at[g->unit]->object;
-    return !o || o->kind == KIND_REGISTER ? properties[g->property].help : object_name(o);
-}
-
 /* A value of the figure in the unit in which it is shown. */
 static double shown(struct job *j, figure_id id, double x)
 {
@@ -83,7 +75,7 @@ static void turn_row(struct job *j, struct block *b, const struct turn *t)
     const char *unit = unit_of(j, t->input), *name = figure_name(j->figures, j->arena, t->input);
     double at = shown(j, t->input, t->at);
     row_text(r, row, name);
-    row_text(r, row, what_it_is(j, t->input));
+    row_text(r, row, figure_subject(j, t->input));
     row_number(r, row, shown(j, t->input, figure_value(j->figures, t->input)), name);
     row_number(r, row, at, t->name);
     row_text(r, row, unit);
@@ -163,7 +155,7 @@ const char *turn_sentence(struct job *j, const struct weighing *w)
     const struct turn *t = &all->list.at[0];
     return arena_printf(j->arena, "It would turn to %s if %s (%s) were %s %s; now %s.",
                         against(t->other), figure_name(j->figures, j->arena, t->input),
-                        what_it_is(j, t->input), turn_sides[t->side], words(j, t, t->at),
+                        figure_subject(j, t->input), turn_sides[t->side], words(j, t, t->at),
                         words(j, t, t->now));
 }
 
@@ -175,18 +167,18 @@ static const char *net_words(struct job *j, const struct alternative *x)
                                  : figure_name(j->figures, j->arena, x->net);
 }
 
-const char *turn_formula(struct job *j, const struct turn *t)
+struct consumed turn_consumed(struct job *j, const struct turn *t)
 {
-    return arena_printf(j->arena, "turns(%s; %s; %s)", figure_name(j->figures, j->arena, t->input),
-                        net_words(j, t->best), net_words(j, t->other));
-}
-
-void turn_inputs_of_formula(struct job *j, const struct turn *t, struct figure_ids *out)
-{
+    struct consumed c = {.name = t->name, .value = t->at, .dim = figure_dim(j->figures, t->input)};
     figure_id all[] = {t->input, t->best->net, t->other->net};
+    c.words = figure_words(j, t->input, t->at);
+    c.formula =
+        arena_printf(j->arena, "turns(%s; %s; %s)", figure_name(j->figures, j->arena, t->input),
+                     net_words(j, t->best), net_words(j, t->other));
     for (size_t i = 0; i < sizeof all / sizeof *all; i++)
         if (all[i] != FIGURE_NONE)
-            *array_push(j->arena, out) = all[i];
+            *array_push(j->arena, &c.inputs) = all[i];
+    return c;
 }
 
 void part_turn_head(struct job *j, const struct turn *t)

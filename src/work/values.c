@@ -141,3 +141,10 @@ const char *figure_source(struct job *j, figure_id id)
     figure_inputs(j->figures, j->arena, id, &inputs);
     return inputs.n ? "" : "none";
 }
+
+const char *figure_subject(const struct job *j, figure_id id)
+{
+    const struct figure *g = figure_at(j->figures, id);
+    const struct object *o = j->figures->units.at[g->unit]->object;
+    return !o || o->kind == KIND_REGISTER ? properties[g->property].help : object_name(o);
+}

@@ -285,12 +285,13 @@ void part_weighing_grid(struct job *j, struct weighing *w)
 
 void part_conventions(struct job *j)
 {
+    bool at_end = j->model->settings->yearly_amounts == YEARLY_END_OF_YEAR;
     report_note(
         j->report, "conventions",
-        "Present values at %s; investments at the start of their year, damage and running cost in "
-        "the middle of each year; damage counted: %s.",
+        "Present values at %s; investments at the start of their year, damage and running cost %s "
+        "of each year; damage counted: %s.",
         node_says(j->arena, node_get(model_find(j->model, REGISTER_ID)->node, "discount"), 40),
-        perspective_words(j));
+        at_end ? "at the end" : "in the middle", perspective_words(j));
 }
 
 /* --- the use case --- */

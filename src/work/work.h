@@ -7,6 +7,7 @@
 #ifndef WORK_WORK_H
 #define WORK_WORK_H
 
+#include "decide/lean.h"
 #include "decide/turn.h"
 #include "ohmen/ohmen.h"
 #include "report/block.h"
@@ -27,6 +28,14 @@ struct ohmen_report {
     ARRAY(const char *) diagnostics;
     const char *text; /* of an export */
     jmp_buf guard;    /* of the writers */
+};
+
+/* What is worked out from figures and is none of the graph, for explaining. */
+struct consumed {
+    const char *name, *words, *formula;
+    double value; /* in base units of dim */
+    struct dim dim;
+    struct figure_ids inputs; /* that the formula names */
 };
 
 /* What cannot be evaluated, and why. */
@@ -81,6 +90,11 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e);
 /* Is the site (NULL: none) the one that the query asks for, or inside it? Always, where it
  * asks for none. */
 bool job_at_site(const struct job *j, const char *site);
+/* Is the site (NULL: none) this one, or inside it? */
+bool site_is_in(const struct model *m, const char *site, const char *whole);
+/* The same of an object: a site by itself, others by their field; always, where its kind has no
+ * such field. */
+bool job_has_at_site(const struct job *j, const struct object *o);
 
 /* Notes an object that cannot be evaluated (OHMEN_COMPUTE), and goes on; any other status is
  * handed on. */
@@ -112,6 +126,11 @@ void part_unused(struct job *j);
 void part_linearity(struct job *j, const struct hazards *h);
 void part_cautions(struct job *j);
 
+/* What objects lack to be kept alive (gaps.c): a row each; and counted by what is lacking, as a
+ * chapter of the report. */
+void part_gaps(struct job *j);
+void part_gaps_counted(struct job *j);
+
 #define HOURS_PER_YEAR 8760.
 
 /* All of a weighing that `weigh` and the report print, without the grid; and its parts. They rank
@@ -130,6 +149,8 @@ void part_together(struct job *j, const struct weighing *w);
 void part_customers_and_people(struct job *j, const struct weighing *w);
 /* Outcomes that hold much of the risk: how often now, and with the best alternative. */
 void part_endings(struct job *j, const struct weighing *w);
+/* The three of them that hold the greatest risk, in words. */
+const char *endings_sentence(struct job *j, const struct weighing *w);
 /* What is best to perspectives for which the best alternative is not; "" where it is for all. */
 const char *perspectives_sentence(struct job *j, const struct weighing *w);
 /* Hazards outside the focus that the best alternative changes; "" where there are none. */
@@ -158,8 +179,16 @@ const char *turn_sentence(struct job *j, const struct weighing *w);
  * that this names. */
 void part_turn_head(struct job *j, const struct turn *t);
 void part_turn_method(struct job *j, const struct turn *t);
-const char *turn_formula(struct job *j, const struct turn *t);
-void turn_inputs_of_formula(struct job *j, const struct turn *t, struct figure_ids *out);
+struct consumed turn_consumed(struct job *j, const struct turn *t);
+
+/* What a decision rests on: inputs by how much they move it, and their sources. It is ranked. */
+void part_rests_on(struct job *j, const struct weighing *w);
+/* The derivation of one such movement. */
+void part_lean_head(struct job *j, const struct lean *x);
+struct consumed lean_consumed(struct job *j, const struct lean *x);
+
+/* What the figure belongs to, by its name; the register's own settings by what they are. */
+const char *figure_subject(const struct job *j, figure_id id);
 
 /* Criteria lines of the register for a grid; only those whose scope is a hazard. */
 void part_criteria_lines(struct job *j, struct block *grid);
@@ -188,6 +217,9 @@ const char *figure_source(struct job *j, figure_id id);
 /* A node in one line: a scalar's text, or its flow form, without the outer brackets; cut at
  * `most` columns. */
 const char *node_says(struct arena *a, const struct node *n, size_t most);
+
+/* A text, or what of it fits into `most` columns, with dots. The result may be the text. */
+const char *brief(struct arena *a, const char *text, size_t most);
 
 /* What a document says of an object: a map of its fields, in the order of their table. */
 const struct node *object_document(struct arena *a, const struct object *o);

@@ -85,40 +85,52 @@ static const struct alternative *best_to(const struct job *j, const struct weigh
     return best;
 }
 
+/* "For company the best is TQ-ROUNDS, worth 12.4 kEUR; TQ-ARC would be worth -3 kEUR to it." */
+static void other_perspective(struct job *j, struct text *t, const struct alternative *best,
+                              size_t p, const struct alternative *x)
+{
+    const char *currency = j->model->settings->currency;
+    text_printf(t, "%sFor %s the best is ", t->n ? " " : "",
+                j->model->settings->perspectives.keys[p]);
+    if (x->n)
+        text_printf(t, "%s, worth %s", x->name, money_text(j->arena, net_to(j, x, p), currency));
+    else
+        text_add(t, "to do nothing");
+    if (best->n)
+        text_printf(t, "; to it %s would be worth %s", best->name,
+                    money_text(j->arena, net_to(j, best, p), currency));
+    text_byte(t, '.');
+}
+
 const char *perspectives_sentence(struct job *j, const struct weighing *w)
 {
     const struct alternative *best = &w->alternatives.at[w->order[0]];
     const struct rows *rows = &j->model->settings->perspectives;
-    const char *currency = j->model->settings->currency;
     struct text t;
     text_init(&t, j->arena);
     for (size_t p = 0; p < rows->n; p++) {
         const struct alternative *x = best_to(j, w, p);
-        if (x == best ||
-            (j->figures->perspective && text_equal(rows->keys[p], j->figures->perspective)))
-            continue;
-        text_printf(&t, "%sTo %s the best is %s", t.n ? " " : "", rows->keys[p],
-                    x->n ? "" : "to do nothing");
-        if (x->n)
-            text_printf(&t, "%s, worth %s", x->name,
-                        money_text(j->arena, net_to(j, x, p), currency));
-        if (best->n)
-            text_printf(&t, "; %s is worth %s to it", best->name,
-                        money_text(j->arena, net_to(j, best, p), currency));
-        text_add(&t, ".");
+        bool own = j->figures->perspective && text_equal(rows->keys[p], j->figures->perspective);
+        if (x != best && !own)
+            other_perspective(j, &t, best, p, x);
     }
     return text_str(&t);
 }
 
 /* --- together and apart --- */
 
+/* What is less than this share of what it is a difference of is rounding, and shown as 0. */
+static const double ROUNDING = 1e-9;
+
 static void together_row(struct job *j, struct block *b, const struct alternative *x)
 {
     struct row *row = block_row(j->report, b);
-    double together = value_of(j, x->together);
+    double together = value_of(j, x->together), size = fabs(value_of(j, x->present_damage));
+    if (fabs(together) <= ROUNDING * size)
+        together = 0;
     row_text(j->report, row, x->name);
     figure_cell(j, row, x->net);
-    figure_cell(j, row, x->together);
+    row_number(j->report, row, together, figure_name(j->figures, j->arena, x->together));
     row_text(j->report, row, together > 0 ? "more" : together < 0 ? "less" : "the same");
 }
 
@@ -146,14 +158,6 @@ void part_together(struct job *j, const struct weighing *w)
 
 /* --- supply and people --- */
 
-static bool any_customer(const struct job *j, const struct weighing *w)
-{
-    for (size_t i = 1; i < w->alternatives.n; i++)
-        if (value_of(j, w->alternatives.at[i].avoids_time) != 0)
-            return true;
-    return false;
-}
-
 double worst_individual_risk(const struct job *j, const struct weighing *w,
                              const struct alternative *x, size_t *group)
 {
@@ -167,98 +171,133 @@ double worst_individual_risk(const struct job *j, const struct weighing *w,
     return worst;
 }
 
-static bool has_people_criteria(const struct job *j)
+static double most_time(const struct job *j, const struct weighing *w)
 {
-    const struct criteria *c = j->model->settings->criteria;
-    return c && c->people;
+    double most = 0;
+    for (size_t i = 1; i < w->alternatives.n; i++)
+        most = fmax(most, fabs(value_of(j, w->alternatives.at[i].avoids_time)));
+    return most;
 }
 
-static void people_cells(struct job *j, struct row *row, const struct weighing *w,
-                         const struct alternative *x)
-{
-    struct report *r = j->report;
-    size_t group;
-    double worst = worst_individual_risk(j, w, x, &group);
-    figure_cell(j, row, x->avoids_fatalities);
-    figure_cell(j, row, x->per_fatality);
-    if (has_people_criteria(j))
-        figure_cell(j, row, x->disproportion);
-    row_number(r, row, worst, figure_name(j->figures, j->arena, x->individual[group]));
-    row_text(r, row, w->groups.at[group].id);
-    if (has_people_criteria(j))
-        row_text(r, row, people_word(j, worst));
-}
-
-static void supply_row(struct job *j, struct block *b, const struct weighing *w,
-                       const struct alternative *x, bool customers)
+static void customer_row(struct job *j, struct block *b, const struct alternative *x, double most)
 {
     struct row *row = block_row(j->report, b);
+    double time = figure_value(j->figures, x->avoids_time);
+    if (fabs(time) <= ROUNDING * most)
+        time = 0;
     row_text(j->report, row, alternative_words(x));
-    if (customers && x->n) {
-        row_number(j->report, row, figure_value(j->figures, x->avoids_time) * HOURS_PER_YEAR,
-                   figure_name(j->figures, j->arena, x->avoids_time));
-        if (x->per_hour == FIGURE_NONE)
-            row_empty(j->report, row);
-        else
-            row_number(j->report, row, figure_value(j->figures, x->per_hour) / HOURS_PER_YEAR,
-                       figure_name(j->figures, j->arena, x->per_hour));
-    } else if (customers) {
+    row_number(j->report, row, time * HOURS_PER_YEAR,
+               figure_name(j->figures, j->arena, x->avoids_time));
+    if (x->per_hour == FIGURE_NONE)
         row_empty(j->report, row);
-        row_empty(j->report, row);
-    }
-    if (w->groups.n)
-        people_cells(j, row, w, x);
+    else
+        row_number(j->report, row, figure_value(j->figures, x->per_hour) / HOURS_PER_YEAR,
+                   figure_name(j->figures, j->arena, x->per_hour));
 }
 
-static void people_columns(struct job *j, struct block *b)
+static void customers_table(struct job *j, const struct weighing *w)
 {
     struct report *r = j->report;
-    const char *currency = j->model->settings->currency;
-    block_column(r, b, "avoids-fatalities", "Deaths avoided", "1/a", STYLE_PLAIN)->keep = 2;
-    block_column(r, b, "net-cost-per-fatality", "Net cost per death avoided", currency, STYLE_MONEY)
-        ->keep = 2;
-    if (has_people_criteria(j))
-        block_column(r, b, "disproportion", "Disproportion", "", STYLE_RATIO)->keep = 1;
-    block_column(r, b, "individual-risk", "Risk of a person", "1/a", STYLE_FREQUENCY)->keep = 4;
+    const char *per_hour = arena_printf(j->arena, "%s/h", j->model->settings->currency);
+    struct block *b = report_table(r, "customers",
+                                   "Customer hours without supply that are avoided in a mean year");
+    block_column(r, b, "alternative", "Alternative", "", STYLE_PLAIN);
+    block_column(r, b, "avoids-customer-time", "Avoided", "h/a", STYLE_PLAIN);
+    block_column(r, b, "cost-per-customer-hour", "Cost of each hour", per_hour, STYLE_MONEY);
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        if (w->alternatives.at[w->order[i]].n)
+            customer_row(j, b, &w->alternatives.at[w->order[i]], most_time(j, w));
+}
+
+static const struct people_criteria *people_criteria(const struct job *j)
+{
+    const struct criteria *c = j->model->settings->criteria;
+    return c ? c->people : NULL;
+}
+
+/* Does any alternative have this price of a life? */
+static bool any_price(const struct weighing *w, bool disproportion)
+{
+    for (size_t i = 1; i < w->alternatives.n; i++) {
+        const struct alternative *x = &w->alternatives.at[i];
+        if ((disproportion ? x->disproportion : x->per_fatality) != FIGURE_NONE)
+            return true;
+    }
+    return false;
+}
+
+static const char *disproportion_word(const struct job *j, const struct alternative *x)
+{
+    const struct people_criteria *c = people_criteria(j);
+    if (!c || !c->disproportion || x->disproportion == FIGURE_NONE)
+        return "";
+    double limit = expr_constant(c->disproportion->expr);
+    return value_of(j, x->disproportion) > limit ? "gross" : "not gross";
+}
+
+static void people_row(struct job *j, struct block *b, const struct weighing *w,
+                       const struct alternative *x)
+{
+    struct report *r = j->report;
+    struct row *row = block_row(r, b);
+    size_t group;
+    double worst = worst_individual_risk(j, w, x, &group);
+    row_text(r, row, alternative_words(x));
+    row_number(r, row, worst, figure_name(j->figures, j->arena, x->individual[group]));
+    row_text(r, row, w->groups.at[group].id);
+    if (people_criteria(j))
+        row_text(r, row, people_word(j, worst));
+    figure_cell(j, row, x->avoids_fatalities);
+    if (any_price(w, false))
+        figure_cell(j, row, x->per_fatality);
+    if (any_price(w, true)) {
+        figure_cell(j, row, x->disproportion);
+        row_text(r, row, disproportion_word(j, x));
+    }
+}
+
+static void people_table(struct job *j, const struct weighing *w)
+{
+    struct report *r = j->report;
+    struct block *b = report_table(r, "people", "People");
+    block_column(r, b, "alternative", "Alternative", "", STYLE_PLAIN);
+    block_column(r, b, "individual-risk", "Risk of a person", "1/a", STYLE_FREQUENCY);
     block_column(r, b, "group", "Of", "", STYLE_PLAIN)->keep = 3;
-    if (has_people_criteria(j))
-        block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 5;
+    if (people_criteria(j))
+        block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN);
+    block_column(r, b, "avoids-fatalities", "Deaths avoided", "1/a", STYLE_PLAIN)->keep = 2;
+    if (any_price(w, false))
+        block_column(r, b, "net-cost-per-fatality", "Net cost of each",
+                     j->model->settings->currency, STYLE_MONEY)
+            ->keep = 2;
+    if (any_price(w, true)) {
+        block_column(r, b, "disproportion", "Disproportion", "", STYLE_RATIO)->keep = 1;
+        block_column(r, b, "gross", "Gross", "", STYLE_PLAIN)->keep = 1;
+    }
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        people_row(j, b, w, &w->alternatives.at[w->order[i]]);
+    report_note(
+        r, "people-words",
+        "Risk of a person: of death, per year, over all hazards of the register, in the group that "
+        "bears most, once the options are in service.%s Deaths stand beside the money and are not "
+        "part of it.",
+        any_price(w, false) ? " Net cost of each death avoided: what an alternative costs beyond "
+                              "the damage that it "
+                              "avoids; empty where it avoids more than it costs, or no deaths."
+                            : "");
 }
 
 void part_customers_and_people(struct job *j, const struct weighing *w)
 {
-    struct report *r = j->report;
-    bool customers = any_customer(j, w);
-    if (!customers && w->groups.n == 0)
-        return;
-    struct block *b = report_table(r, "customers-and-people",
-                                   "What the alternatives do for customers and people");
-    block_column(r, b, "alternative", "Alternative", "", STYLE_PLAIN);
-    if (customers) {
-        block_column(r, b, "avoids-customer-time", "Without supply, avoided", "customer h/a",
-                     STYLE_PLAIN)
-            ->keep = 4;
-        block_column(r, b, "cost-per-customer-hour", "Cost of an hour",
-                     arena_printf(j->arena, "%s/h", j->model->settings->currency), STYLE_MONEY)
-            ->keep = 3;
-    }
+    if (most_time(j, w) > 0)
+        customers_table(j, w);
     if (w->groups.n)
-        people_columns(j, b);
-    for (size_t i = 0; i < w->alternatives.n; i++)
-        supply_row(j, b, w, &w->alternatives.at[w->order[i]], customers);
-    if (w->groups.n)
-        report_note(
-            r, "individual-risk",
-            "Risk of a person: of death, per year, over all hazards of the register, of the "
-            "group that bears most, once the options are in service. Deaths avoided, and "
-            "the money that they cost beyond what is avoided in damage, stand beside the "
-            "money and are not part of it.");
+        people_table(j, w);
 }
 
 const char *people_word(struct job *j, double risk)
 {
-    const struct criteria *c = j->model->settings->criteria;
-    const struct people_criteria *p = c ? c->people : NULL;
+    const struct people_criteria *p = people_criteria(j);
     if (!p)
         return "";
     if (p->intolerable_above && risk > expr_constant(p->intolerable_above->expr))
@@ -311,90 +350,4 @@ const char *outside_focus_sentence(struct job *j, const struct weighing *w)
         return "";
     return arena_printf(j->arena, "%s also changes the risk of hazards outside the focus: %s.",
                         best->name, text_str(&t));
-}
-
-/* --- how it ends --- */
-
-/* Outcomes with at least this share of a hazard's risk, before or after, are bad ends. */
-static const double SHARE_OF_RISK = 0.1;
-
-struct ending {
-    const struct compiled *hazard; /* NULL: there is none */
-    size_t outcome;                /* SIZE_MAX: it has none of that name */
-};
-
-static struct ending ending_of(const struct compiled *hazard, const char *outcome)
-{
-    struct ending x = {hazard, SIZE_MAX};
-    const struct hazard *h = hazard ? hazard->object->data : NULL;
-    for (size_t k = 0; h && k < h->outcomes.n; k++)
-        if (text_equal(h->outcomes.keys[k], outcome))
-            x.outcome = k;
-    return x;
-}
-
-static bool is_bad(const struct job *j, const struct ending *x)
-{
-    if (!x->hazard || x->outcome == SIZE_MAX)
-        return false;
-    const struct hazard_exports *h = x->hazard->exports;
-    double all = figure_value(j->figures, h->risk);
-    return all > 0 && figure_value(j->figures, h->risk_of[x->outcome]) >= SHARE_OF_RISK * all;
-}
-
-static void ending_frequency(struct job *j, struct row *row, const struct ending *x)
-{
-    const struct hazard_exports *h = x->hazard ? x->hazard->exports : NULL;
-    figure_cell(j, row, h && x->outcome != SIZE_MAX ? h->frequency_of[x->outcome] : FIGURE_NONE);
-}
-
-static void ending_row(struct job *j, struct block *b, const char *id, const struct ending *now,
-                       const struct ending *then, bool both)
-{
-    struct row *row = block_row(j->report, b);
-    const struct ending *shown = now->outcome != SIZE_MAX && now->hazard ? now : then;
-    const struct hazard *h = shown->hazard->object->data;
-    const struct hazard_exports *x = shown->hazard->exports;
-    row_text(j->report, row, id);
-    row_text(j->report, row, ROW(struct outcome, h->outcomes, shown->outcome)->name);
-    ending_frequency(j, row, now);
-    if (both)
-        ending_frequency(j, row, then);
-    figure_cell(j, row, x->damage_of[shown->outcome]);
-}
-
-/* Outcomes of one hazard: those that it has now, then those that only the alternative has. */
-static void ending_rows(struct job *j, struct block *b, const char *id, const struct compiled *now,
-                        const struct compiled *then, bool both)
-{
-    const struct compiled *of[] = {now, then};
-    for (size_t side = 0; side < (both ? 2 : 1); side++) {
-        const struct hazard *h = of[side] ? of[side]->object->data : NULL;
-        for (size_t k = 0; h && k < h->outcomes.n; k++) {
-            struct ending p = ending_of(now, h->outcomes.keys[k]);
-            struct ending q = ending_of(then, h->outcomes.keys[k]);
-            bool seen = side == 1 && p.hazard && p.outcome != SIZE_MAX;
-            if (!seen && (is_bad(j, &p) || (both && is_bad(j, &q))))
-                ending_row(j, b, id, &p, &q, both);
-        }
-    }
-}
-
-void part_endings(struct job *j, const struct weighing *w)
-{
-    const struct alternative *best = &w->alternatives.at[w->order[0]];
-    struct report *r = j->report;
-    struct block *b = report_table(r, "endings", "How often it ends badly");
-    block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
-    block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
-    block_column(r, b, "today", "Today", "1/a", STYLE_FREQUENCY);
-    if (best->n)
-        block_column(r, b, "recommended", arena_printf(j->arena, "With %s", best->name), "1/a",
-                     STYLE_FREQUENCY);
-    block_column(r, b, "damage", "Damage", j->model->settings->currency, STYLE_MONEY)->keep = 1;
-    for (size_t i = 0; i < w->hazards.n; i++)
-        ending_rows(j, b, w->hazards.at[i].id, w->hazards.at[i].now, best->hazards[i], best->n > 0);
-    report_note(r, "endings-shown",
-                "Outcomes that hold at least %.0f %% of the risk of their hazard%s.",
-                100 * SHARE_OF_RISK, best->n ? ", now or with what is recommended" : "");
 }

@@ -21,8 +21,8 @@ long double formula_course_at(const struct formula_course *c, long double t)
     bool reset = c->tested && t >= c->first;
     long double since = reset ? c->first + floorl((t - c->first) / c->every) * c->every : c->from;
     long double start = c->fresh && !reset ? 0 : c->left;
-    long double h = grown(start, c->rate, c->ending, t - since);
-    long double m = grown(0, c->unreset, c->ending, t - c->born);
+    long double h = grown(start, c->rate, c->ending, fmaxl(t - since, 0));
+    long double m = grown(0, c->unreset, c->ending, fmaxl(t - c->born, 0));
     return c->standing + (1 - c->standing) * (h + (1 - h) * m);
 }
 

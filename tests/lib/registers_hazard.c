@@ -369,9 +369,32 @@ static void relate(struct generator *g, struct node *m, const struct changing *a
              names);
 }
 
+/* A life, and perhaps renewals at the end of each. */
+static void add_life(struct generator *g, struct node *m)
+{
+    if (!random_chance(g, 2))
+        return;
+    put_text(g, m, "life", arena_printf(g->arena, "%u a", random_draw(g, 1, 40)));
+    if (node_get(m, "invest") && random_chance(g, 2))
+        put_text(g, m, "renewed", random_chance(g, 4) ? "no" : "yes");
+}
+
+/* What it settles with an earlier option that it has no quarrel with: an element of its own. */
+static void settle(struct generator *g, struct node *m, const struct changing *all, unsigned i)
+{
+    unsigned k = i ? random_draw(g, 0, i - 1) : 0;
+    if (!i || !random_chance(g, 3) || !are_apart(all[i].touched, all[k].touched))
+        return;
+    struct node *element = make_pair(g, "per-demand", random_quantity(g, PROBABILITY));
+    struct node *change =
+        make_pair(g, "elements", make_pair(g, arena_printf(g->arena, "C-%u", i + 1), element));
+    put_node(g, m, "combine", make_pair(g, g->ids[KIND_OPTION].at[k], change));
+}
+
 void registers_add_options(struct generator *g)
 {
-    static const char *const skip[] = {"excludes", "requires", "change", NULL};
+    static const char *const skip[] = {"excludes", "requires", "change", "life",
+                                       "renewed",  "combine",  NULL};
     size_t n = g->ids[KIND_OPTION].n;
     struct changing *all = NEW_ARRAY(g->arena, n, struct changing);
     struct node *section = make_map(g);
@@ -381,6 +404,8 @@ void registers_add_options(struct generator *g)
         struct node *m = make_pair(g, "change", option_change(g, &all[i]));
         fill_fields(g, m, kinds[KIND_OPTION].table, skip);
         relate(g, m, all, i);
+        add_life(g, m);
+        settle(g, m, all, i);
         put_node(g, section, g->ids[KIND_OPTION].at[i], m);
     }
     put_node(g, g->root, "options", section);

@@ -6,9 +6,10 @@
 #   OHMEN=path/to/ohmen [OTHER=path/to/another/ohmen] tests/tools/bytes.sh
 #
 # A register of the sample network is made and each command of the list below is run in a
-# plain environment; then again in each of the other environments, and by OTHER (the same
+# plain environment; then again in each of the other environments, or by OTHER (the same
 # source, built by another compiler) on that register and on one that OTHER made itself.
-# Each output must be the first one, byte for byte. A locale that the machine lacks is a
+# Each output must be the first one, byte for byte. With OTHER only the two builds are compared:
+# the other environments are for the run without. A locale that the machine lacks is a
 # failure: .ci/prepare makes it.
 set -u
 
@@ -137,37 +138,55 @@ make first "$ohmen"
 run "$commands" first first "$ohmen"
 run "$unicode" first unicode "$ohmen"
 
-# Under a sanitizer (OHMEN_FEW) one locale is enough: the same bytes are for the builds that
-# people run.
-locales='C de_DE.UTF-8 tr_TR.UTF-8'
-[ -z "${OHMEN_FEW-}" ] || locales=tr_TR.UTF-8
-for locale in $locales; do
-    name=$(printf '%s' "$locale" | sed 's/UTF-8/utf8/')
-    locale -a | grep -qx "$name" || complain "this machine lacks the locale $locale"
-    again "in the locale $locale" first "$ohmen" "LC_ALL=$locale" "LANG=$locale"
-    case $locale in
-    *UTF-8)
-        run "$unicode" first again "$ohmen" "LC_ALL=$locale" "LANG=$locale"
-        compare "$unicode" unicode again "in the locale $locale"
-        ;;
-    esac
-done
-[ -z "${OHMEN_FEW-}" ] || { echo "Checks: $checks, Failures: $failed, Errors: 0"; exit "$failed"; }
-again 'in another time zone' first "$ohmen" TZ=Pacific/Kiritimati
 # The C library picks its functions by what the processor can do; here it can do little.
 narrow=glibc.cpu.hwcaps=-AVX512F,-AVX512VL,-AVX512BW,-AVX512DQ,-AVX512CD,-AVX2,-AVX,-FMA
 narrow=$narrow,-FMA4,-BMI1,-BMI2,-LZCNT,-MOVBE,-SSE4_2,-SSE4_1,-SSSE3,-ERMS
-again 'with narrow instructions' first "$ohmen" "GLIBC_TUNABLES=$narrow"
-make turkish "$ohmen" LC_ALL=tr_TR.UTF-8 LANG=tr_TR.UTF-8 TZ=Pacific/Kiritimati \
-    "GLIBC_TUNABLES=$narrow"
-again 'of a register that was made elsewhere' turkish "$ohmen"
-if [ -n "$other" ]; then
+
+# Under a sanitizer (OHMEN_FEW) one locale is enough: the same bytes are for the builds that
+# people run.
+in_locales()
+{
+    locales='C de_DE.UTF-8 tr_TR.UTF-8'
+    [ -z "${OHMEN_FEW-}" ] || locales=tr_TR.UTF-8
+    for locale in $locales; do
+        name=$(printf '%s' "$locale" | sed 's/UTF-8/utf8/')
+        locale -a | grep -qx "$name" || complain "this machine lacks the locale $locale"
+        again "in the locale $locale" first "$ohmen" "LC_ALL=$locale" "LANG=$locale"
+        case $locale in
+        *UTF-8)
+            run "$unicode" first again "$ohmen" "LC_ALL=$locale" "LANG=$locale"
+            compare "$unicode" unicode again "in the locale $locale"
+            ;;
+        esac
+    done
+}
+
+elsewhere()
+{
+    again 'in another time zone' first "$ohmen" TZ=Pacific/Kiritimati
+    again 'with narrow instructions' first "$ohmen" "GLIBC_TUNABLES=$narrow"
+    make turkish "$ohmen" LC_ALL=tr_TR.UTF-8 LANG=tr_TR.UTF-8 TZ=Pacific/Kiritimati \
+        "GLIBC_TUNABLES=$narrow"
+    again 'of a register that was made elsewhere' turkish "$ohmen"
+}
+
+by_other()
+{
     again 'by the other compiler' first "$other"
     make other "$other"
     again 'of a register made by the other compiler' other "$ohmen"
     again 'by the other compiler, with narrow instructions' other "$other" "GLIBC_TUNABLES=$narrow"
+    run "$unicode" first again "$other"
+    compare "$unicode" unicode again 'by the other compiler'
     checks=$((checks + 1))
     cmp -s first/import.out other/import.out || complain 'by the other compiler: import'
+}
+
+if [ -n "$other" ]; then
+    by_other
+else
+    in_locales
+    [ -n "${OHMEN_FEW-}" ] || elsewhere
 fi
 echo "Checks: $checks, Failures: $failed, Errors: 0"
 [ "$failed" -eq 0 ]

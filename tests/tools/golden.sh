@@ -68,6 +68,7 @@ run()
 # show MARK NAME: what was printed, each line behind its mark.
 show()
 {
+    [ -s "$work/$2" ] || return 0
     awk -v mark="$1" '{ print ($0 == "" ? mark : mark " " $0) }' "$work/$2"
     [ -z "$(tail -c 1 "$work/$2")" ] || printf '%s\n' "\\ $2"
 }
@@ -77,10 +78,9 @@ replay()
 {
     file=
     : >"$work/settings"
+    # The shell reads byte by byte: it need not see what was printed before.
+    sed '/^[>!=\\]/d' "$1" >"$work/steps"
     while IFS= read -r line; do
-        case $line in
-        '>'* | '!'* | '='* | '\'*) continue ;;
-        esac
         printf '%s\n' "$line"
         case $line in
         '$ '*)
@@ -100,7 +100,7 @@ replay()
         '' | '#'*) ;;
         *) echo "what is this line?" ;;
         esac
-    done <"$1"
+    done <"$work/steps"
 }
 
 # fail CASE WHY

@@ -104,6 +104,38 @@ START_TEST(composition)
 }
 END_TEST
 
+/* text, folded: CaseFolding.txt of Unicode, statuses C and F, then form C */
+static const struct {
+    const char *from, *to;
+} foldings[] = {
+    {"", ""},
+    {"relay 51-a", "relay 51-a"},
+    {"Relay 51-A", "relay 51-a"},
+    {"Stra\xC3\x9F"
+     "e",
+     "strasse"},
+    {"\xE1\xBA\x9E", "ss"},
+    {"\xCE\xA3", "\xCF\x83"}, /* sigma, and the final one */
+    {"\xCF\x82", "\xCF\x83"},
+    {"E\xCC\x81", "\xC3\xA9"}, /* e acute, composed */
+    {"\xC3\x89", "\xC3\xA9"},
+    {"I", "i"}, /* in every locale */
+    {"\xC4\xB0", "i\xCC\x87"},
+    {"\xEF\xAC\x81", "fi"}, /* a ligature */
+};
+
+#define FOLDINGS (int)(sizeof foldings / sizeof foldings[0])
+
+START_TEST(folding)
+{
+    struct arena *a = arena_new(NULL);
+    const char *once = utf8_fold(a, foldings[_i].from);
+    ck_assert_str_eq(once, foldings[_i].to);
+    ck_assert_str_eq(utf8_fold(a, once), foldings[_i].to);
+    arena_free(a);
+}
+END_TEST
+
 START_TEST(composition_draws_from_the_seam)
 {
     struct failmem f;
@@ -250,6 +282,7 @@ Suite *suite_utf8(void)
     tcase_add_test(t, every_beginning);
     tcase_add_loop_test(t, first_bad_byte, 0, VALIDITY);
     tcase_add_loop_test(t, composition, 0, COMPOSITIONS);
+    tcase_add_loop_test(t, folding, 0, FOLDINGS);
     tcase_add_test(t, composition_draws_from_the_seam);
     tcase_add_loop_test(t, shown_harmlessly, 0, SHOWN);
     tcase_add_loop_test(t, shown_alike_in_other_locales, 0, SHOWN);

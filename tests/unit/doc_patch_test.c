@@ -336,6 +336,43 @@ START_TEST(agreeing_patches_commute)
 END_TEST
 
 /* One further key of a large map costs no more than a walk through it. */
+/* ---- what another patch settles ---- */
+
+struct settled_case {
+    const char *patch, *settled, *left; /* NULL: nothing */
+};
+
+static const struct settled_case settled_cases[] = {
+    {"{\"a\":1,\"b\":2}", "{\"a\":3}", "{\"b\":2}"},
+    {"{\"a\":1}", "{\"a\":1}", NULL},
+    {"{\"a\":{\"b\":1}}", "{\"a\":{\"b\":2}}", NULL},
+    {"{\"a\":{\"b\":1,\"c\":2}}", "{\"a\":{\"b\":false}}", "{\"a\":{\"c\":2}}"},
+    {"{\"a\":{\"b\":1,\"c\":2}}", "{\"a\":false}", NULL},
+    {"{\"a\":{\"b\":1},\"z\":1}", "{\"a\":[\"x\"]}", "{\"z\":1}"},
+    {"{\"a\":false}", "{\"a\":{\"b\":2}}", "{\"a\":false}"},
+    {"{\"a\":7}", "{\"a\":\"2 * was\"}", "{\"a\":7}"},
+    {"{\"a\":\"2 * was\"}", "{\"a\":7}", NULL},
+    {"{\"a\":{}}", "{\"a\":{\"b\":2}}", "{\"a\":{}}"},
+    {"{\"z\":1,\"a\":2}", "{\"c\":3}", "{\"a\":2,\"z\":1}"},
+};
+
+START_TEST(settled_paths_say_nothing)
+{
+    struct arena *a = arena_new(NULL);
+    struct rules_ctx ctx = {a, 0};
+    const struct settled_case *x = &settled_cases[_i];
+    struct patch_rules rules = rules_for(&ctx);
+    const struct node *patch = json_tree(a, x->patch), *settled = json_tree(a, x->settled);
+    const struct node *left = patch_without(a, &rules, patch, settled);
+    if (x->left)
+        ck_assert_str_eq(tree_json(a, left), x->left);
+    else
+        ck_assert_ptr_null(left);
+    ck_assert_str_eq(tree_json(a, settled), x->settled);
+    arena_free(a);
+}
+END_TEST
+
 START_TEST(large_maps)
 {
     enum { KEYS = 100000 };
@@ -367,6 +404,8 @@ Suite *suite_patch(void)
     tcase_add_test(t, without_rules);
     tcase_add_loop_test(t, differences_are_listed, 0, sizeof differing / sizeof differing[0]);
     tcase_add_test(t, differences_make_the_other);
+    tcase_add_loop_test(t, settled_paths_say_nothing, 0,
+                        sizeof settled_cases / sizeof settled_cases[0]);
     tcase_add_loop_test(t, contradictions_are_found, 0,
                         sizeof contradicting / sizeof contradicting[0]);
     tcase_add_test(t, agreeing_patches_commute);

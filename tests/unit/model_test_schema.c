@@ -149,7 +149,7 @@ START_TEST(tables_are_spread_out_or_named)
     ck_assert_ptr_nonnull(
         strstr(text, "\n| `invest.is` | money, not below 0 | yes | yes | What it costs |\n"));
     ck_assert_ptr_nonnull(
-        strstr(text, "\n| `early.for` | plain time, above 0 | yes | stored | How long the "));
+        strstr(text, "\n| `early.for` | plain time, above 0 | yes | yes | How long the "));
     ck_assert_ptr_nonnull(strstr(text, "| `excludes` | list of ids, each of an option |"));
     text = filled(&s,
                   "<!-- fields: option -->\n<!-- end -->\n<!-- fields: investment -->\n"

@@ -54,6 +54,35 @@ START_TEST(a_small_table)
 }
 END_TEST
 
+/* A column of data stands in JSON and CSV, whatever the width; the page marks it. */
+START_TEST(columns_of_data_are_not_on_a_page)
+{
+    struct block *b = report_table(&report, "t", NULL);
+    struct text csv, json, html;
+    block_column(&report, b, "id", "Hazard", "", STYLE_PLAIN);
+    block_column(&report, b, "due", "Due", "", STYLE_PLAIN);
+    block_column(&report, b, "late", "Late", "", STYLE_PLAIN)->data = true;
+    struct row *row = block_row(&report, b);
+    row_text(&report, row, "H-1");
+    row_date(&report, row, "2026-05-01")->mark = "overdue";
+    row_yes(&report, row, true);
+    static const char *const expected = "Hazard  Due\n"
+                                        "--------------------------\n"
+                                        "H-1     2026-05-01 overdue\n";
+    ck_assert_str_eq(text_of(arena, &report, 80, true, false), expected);
+    text_init(&csv, arena);
+    text_init(&json, arena);
+    text_init(&html, arena);
+    report_write_csv(&csv, &report);
+    report_write_json(&json, &report);
+    report_write_html(&html, &report);
+    ck_assert_str_eq(text_str(&csv), "id,due,late\r\nH-1,2026-05-01,yes\r\n");
+    ck_assert_ptr_nonnull(strstr(text_str(&json), "\"late\": true"));
+    ck_assert_ptr_nonnull(strstr(text_str(&html), "overdue"));
+    ck_assert_ptr_null(strstr(text_str(&html), "Late"));
+}
+END_TEST
+
 /* Where the decimal point of the last word of a line is, or would be. */
 static size_t point_of(const char *line)
 {
@@ -221,6 +250,7 @@ Suite *suite_report_table(void)
     TCase *t = tcase_create("table");
     tcase_add_checked_fixture(t, setup, teardown);
     tcase_add_test(t, a_small_table);
+    tcase_add_test(t, columns_of_data_are_not_on_a_page);
     tcase_add_loop_test(t, numbers_align_on_the_point, 0, 12);
     tcase_add_test(t, the_least_columns_go_first);
     tcase_add_test(t, texts_wrap_and_lose_nothing);

@@ -7,6 +7,7 @@ int main(void)
 {
     Suite *s = suite_create("weigh");
     suite_add_tcase(s, weigh_set_case());
+    suite_add_tcase(s, weigh_time_case());
     suite_add_tcase(s, weigh_random_case());
     SRunner *runner = srunner_create(s);
     srunner_run_all(runner, CK_NORMAL);

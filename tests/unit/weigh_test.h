@@ -7,5 +7,6 @@
 
 TCase *weigh_random_case(void);
 TCase *weigh_set_case(void);
+TCase *weigh_time_case(void);
 
 #endif

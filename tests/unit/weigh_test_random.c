@@ -7,7 +7,7 @@
 #include "weigh_world.h"
 
 static struct {
-    size_t alternatives, without_cost, negative, left_out, pairs;
+    size_t alternatives, without_cost, negative, left_out, pairs, renewed, early, settled;
 } met;
 
 struct weighed {
@@ -30,8 +30,9 @@ static void compare_alternative(struct weighed *x, const struct alternative *alt
     struct present_values v = decision_worth(x->w, set);
     long double net = v.benefit - v.cost, all = v.damage + v.size;
     compare(x, alt, alt->present_damage, v.damage, all, "damage");
-    compare(x, alt, alt->present_cost, v.cost, v.cost, "cost");
-    compare(x, alt, alt->total, v.damage + v.cost, all + v.cost, "total");
+    compare(x, alt, alt->present_cost, v.cost, v.cost_size, "cost");
+    compare(x, alt, alt->annual_cost, v.annual_cost, v.cost_size, "cost a year");
+    compare(x, alt, alt->total, v.damage + v.cost, all + v.cost_size, "total");
     met.alternatives++;
     if (set == 0) {
         ck_assert(alt->net == FIGURE_NONE && alt->benefit == FIGURE_NONE);
@@ -39,12 +40,13 @@ static void compare_alternative(struct weighed *x, const struct alternative *alt
         return;
     }
     compare(x, alt, alt->benefit, v.benefit, v.size, "benefit");
-    compare(x, alt, alt->net, net, v.size + v.cost, "net");
+    compare(x, alt, alt->net, net, v.size + v.cost_size, "net");
     met.negative += net < 0;
     ck_assert_int_eq(alt->ratio != FIGURE_NONE, v.cost > 0);
     met.without_cost += v.cost == 0;
+    long double rounding = (v.size + fabsl(v.benefit) * v.cost_size / v.cost) / v.cost;
     if (v.cost > 0)
-        compare(x, alt, alt->ratio, v.benefit / v.cost, v.size / v.cost, "ratio");
+        compare(x, alt, alt->ratio, v.benefit / v.cost, rounding, "ratio");
 }
 
 /* --- which and in what order --- */
@@ -109,9 +111,18 @@ static void check_order(const struct weighed *x)
             continue;
         const struct alternative *before = &g->alternatives.at[g->order[i - 1]];
         double better = net_of(x, g->order[i - 1]), worse = net_of(x, g->order[i]);
-        ck_assert(better > worse ||
-                  (better == worse && text_compare(before->name, alt->name) < 0));
+        ck_assert(better > worse || (better == worse && text_compare(before->name, alt->name) < 0));
     }
+}
+
+static void count_set(const struct decision_world *w, unsigned set)
+{
+    for (size_t i = 0; i < w->n_options; i++)
+        for (size_t k = 0; set >> i & 1 && k < w->n_options; k++) {
+            met.renewed += k == i && w->option[i].renewed;
+            met.early += k == i && w->option[i].early_for > 0;
+            met.settled += k < i && set >> k & 1 && w->settled[i][k] > 0;
+        }
 }
 
 static void check_decision(uint64_t seed, size_t options)
@@ -132,6 +143,7 @@ static void check_decision(uint64_t seed, size_t options)
         const struct alternative *alt = &x.weighing->alternatives.at[i];
         ck_assert_str_eq(alt->name, decision_name(x.w, sets[i]));
         compare_alternative(&x, alt, sets[i]);
+        count_set(x.w, sets[i]);
     }
     check_left_out(&x);
     check_order(&x);
@@ -144,12 +156,15 @@ START_TEST(random_decisions)
     for (uint64_t seed = 1; seed <= 300; seed++)
         check_decision(seed, 1 + seed % 5);
     for (uint64_t seed = 1001; seed <= 1012; seed++)
-        check_decision(seed, 7 + seed % 4);
+        check_decision(seed, 7 + seed % 4); /* eight: every combination */
     ck_assert_uint_gt(met.alternatives, 2000);
     ck_assert_uint_gt(met.without_cost, 20);
     ck_assert_uint_gt(met.negative, 100);
     ck_assert_uint_gt(met.left_out, 100);
     ck_assert_uint_gt(met.pairs, 2);
+    ck_assert_uint_gt(met.renewed, 500);
+    ck_assert_uint_gt(met.early, 500);
+    ck_assert_uint_gt(met.settled, 40);
 }
 END_TEST
 

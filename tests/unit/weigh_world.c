@@ -65,6 +65,47 @@ static void draw_option(struct decision_world *w, size_t i)
     o->on = draw_date(w, 2025, 2040);
     o->in_service = draw_date(w, 2025, 2045);
     o->life = one_in(w, 2) ? 0 : (int)random_range(&w->random, 1, 30);
+    o->renewed = o->life && o->invest >= 0 && !one_in(w, 3);
+    o->residual = one_in(w, 2) ? -1 : random_uniform(&w->random, 100, 5e4);
+}
+
+static bool takes_away(const struct plan_option *o, size_t hazard)
+{
+    for (size_t k = 0; k < o->n; k++)
+        if (o->action[k].hazard == hazard && o->action[k].kind == ACTION_REMOVE)
+            return true;
+    return false;
+}
+
+/* Commissioning on a hazard that is always there, which no other option prices while it is
+ * commissioned. */
+static void draw_early(struct decision_world *w, size_t i)
+{
+    static const double lengths[] = {0.25, 1, 2.5, 40};
+    struct plan_option *o = &w->option[i];
+    size_t hazard = random_index(&w->random, HAZARDS);
+    bool price = one_in(w, 3), fits = !one_in(w, 3);
+    for (size_t k = 0; k < w->n_options; k++) {
+        const struct plan_option *other = &w->option[k];
+        fits = fits && !takes_away(other, hazard);
+        price = price && !(other->early_for > 0 && other->early.hazard == hazard);
+    }
+    for (size_t k = 0; k < w->n_options; k++)
+        fits = fits && !(w->option[k].early.kind == ACTION_PRICE && w->option[k].early_for > 0 &&
+                         w->option[k].early.hazard == hazard);
+    if (!fits)
+        return;
+    o->early_for = random_pick(&w->random, lengths);
+    o->early = (struct action){price ? ACTION_PRICE : ACTION_SCALE, hazard,
+                               price ? random_uniform(&w->random, 1e3, 9e5) : 3};
+}
+
+static void settle(struct decision_world *w)
+{
+    for (size_t i = 0; i < w->n_options; i++)
+        for (size_t k = 0; k < i; k++)
+            if (decision_quarrel(w, i, k) != SIZE_MAX && !one_in(w, 3))
+                w->settled[i][k] = w->settled[k][i] = random_uniform(&w->random, 1e3, 9e5);
 }
 
 static void draw_relations(struct decision_world *w)
@@ -75,7 +116,7 @@ static void draw_relations(struct decision_world *w)
         if (k != i && one_in(w, 5))
             w->option[i].excludes |= 1u << k;
         else if (together && one_in(w, 5) && !(w->option[k].excludes >> i & 1))
-            w->option[i].requires |= 1u << k;
+        w->option[i].requires |= 1u << k;
     }
 }
 
@@ -93,14 +134,38 @@ struct decision_world *decision_random(struct arena *a, uint64_t seed, size_t op
     }
     for (size_t i = 0; i < options; i++)
         draw_option(w, i);
+    for (size_t i = 0; i < options; i++)
+        draw_early(w, i);
+    w->end_of_year = one_in(w, 2);
+    settle(w);
     draw_relations(w);
     return w;
 }
 
 /* --- sets --- */
 
+size_t decision_quarrel(const struct decision_world *w, size_t p, size_t q)
+{
+    size_t hazard = SIZE_MAX, n = 0;
+    for (size_t i = 0; i < w->option[p].n; i++)
+        for (size_t k = 0; k < w->option[q].n; k++) {
+            const struct action *x = &w->option[p].action[i], *y = &w->option[q].action[k];
+            if (x->hazard != y->hazard)
+                continue;
+            if (x->kind == ACTION_REMOVE || y->kind == ACTION_REMOVE)
+                return SIZE_MAX;
+            if (x->kind == ACTION_PRICE && y->kind == ACTION_PRICE) {
+                hazard = x->hazard;
+                n++;
+            }
+        }
+    return n == 1 ? hazard : SIZE_MAX;
+}
+
 bool decision_contradicts(const struct decision_world *w, size_t p, size_t q)
 {
+    if (w->settled[p][q] > 0)
+        return false;
     for (size_t i = 0; i < w->option[p].n; i++)
         for (size_t k = 0; k < w->option[q].n; k++) {
             const struct action *x = &w->option[p].action[i], *y = &w->option[q].action[k];
@@ -114,8 +179,24 @@ bool decision_contradicts(const struct decision_world *w, size_t p, size_t q)
     return false;
 }
 
+/* Three options that price one hazard are at odds even where each two of them settle. */
+static bool at_odds(const struct decision_world *w, unsigned set)
+{
+    for (size_t i = 0; i < w->n_options; i++)
+        for (size_t j = 0; j < i; j++)
+            for (size_t k = 0; k < j; k++) {
+                bool all = set >> i & 1 && set >> j & 1 && set >> k & 1;
+                if (all && w->settled[i][j] > 0 && w->settled[i][k] > 0 && w->settled[j][k] > 0 &&
+                    decision_quarrel(w, i, j) == decision_quarrel(w, i, k))
+                    return true;
+            }
+    return false;
+}
+
 bool decision_possible(const struct decision_world *w, unsigned set)
 {
+    if (at_odds(w, set))
+        return false;
     size_t n = 0;
     for (size_t i = 0; i < w->n_options; i++) {
         const struct plan_option *o = &w->option[i];
@@ -200,6 +281,42 @@ static void list_text(struct text *t, const struct decision_world *w, const char
     text_byte(t, ']');
 }
 
+static void time_text(struct text *t, const struct decision_world *w, const struct plan_option *o)
+{
+    if (o->life)
+        text_printf(t, ", life: %d a", o->life);
+    text_add(t, o->renewed ? ", renewed: yes" : "");
+    if (o->residual >= 0) {
+        text_add(t, ", residual: ");
+        number(t, o->residual);
+        text_add(t, " EUR");
+    }
+    if (o->early_for > 0) {
+        text_add(t, ", early: {for: ");
+        number(t, o->early_for);
+        text_add(t, " a, change: {hazards: {");
+        action_text(t, w, &o->early);
+        text_add(t, "}}}");
+    }
+}
+
+/* The later of two options says it, both do where their sum is even. */
+static void settled_text(struct text *t, const struct decision_world *w, size_t i)
+{
+    const char *between = "";
+    text_add(t, ", combine: {");
+    for (size_t k = 0; k < w->n_options; k++) {
+        if (w->settled[i][k] == 0 || (k > i && (i + k) % 2))
+            continue;
+        struct action x = {ACTION_PRICE, decision_quarrel(w, i, k), w->settled[i][k]};
+        text_printf(t, "%sO%zu: {hazards: {", between, k);
+        action_text(t, w, &x);
+        text_add(t, "}}");
+        between = ", ";
+    }
+    text_add(t, "}");
+}
+
 /* An option without actions adds an element that nothing uses. */
 static void option_text(struct text *t, const struct decision_world *w, size_t i)
 {
@@ -218,8 +335,8 @@ static void option_text(struct text *t, const struct decision_world *w, size_t i
         text_add(t, " EUR per a");
     }
     date_text(t, "in-service", o->in_service);
-    if (o->life)
-        text_printf(t, ", life: %d a", o->life);
+    time_text(t, w, o);
+    settled_text(t, w, i);
     list_text(t, w, "excludes", o->excludes);
     list_text(t, w, "requires", o->requires);
     text_printf(t, ", change: {elements: {X%zu: {kind: relay, per-demand: 0.5}}, hazards: {", i);
@@ -237,6 +354,7 @@ const char *decision_text(const struct decision_world *w)
     text_printf(&t, "register: {title: A decision, currency: EUR, prices: 2026, horizon: %d a",
                 w->horizon);
     date_text(&t, "start", w->start);
+    text_add(&t, w->end_of_year ? ", yearly-amounts: end-of-year" : "");
     text_add(&t, ", discount: ");
     number(&t, w->interest);
     text_add(&t, " per a}\nhazards:\n");

@@ -32,6 +32,10 @@ struct plan_option {
     double invest, running; /* -1: none */
     struct date on, in_service;
     int life; /* a; 0: none */
+    bool renewed;
+    double residual;             /* -1: none */
+    double early_for;            /* a; 0: no commissioning period */
+    struct action early;         /* what is different in it: of ACTION_SCALE or ACTION_PRICE */
     unsigned excludes, requires; /* bits: numbers of options */
 };
 
@@ -45,6 +49,9 @@ struct decision_world {
     unsigned focus; /* bits: hazards */
     size_t n_options;
     struct plan_option option[OPTIONS];
+    bool end_of_year; /* what is paid in a year is paid at its end */
+    /* The price that two options settle on for the one hazard that both price; 0: none. */
+    double settled[OPTIONS][OPTIONS];
 };
 
 /* At most OPTIONS options. */
@@ -54,11 +61,15 @@ const char *decision_text(const struct decision_world *w);
 /* Can the options of a set (bits) be had together? At most two of more than eight. */
 bool decision_possible(const struct decision_world *w, unsigned set);
 bool decision_contradicts(const struct decision_world *w, size_t p, size_t q);
+/* The hazard on which the prices of two options differ, if they contradict in nothing else;
+ * SIZE_MAX where they do not. */
+size_t decision_quarrel(const struct decision_world *w, size_t p, size_t q);
 const char *decision_name(const struct decision_world *w, unsigned set);
 
 struct present_values {
     long double damage, cost, benefit;
-    long double size; /* of all that was added up for benefit, without signs */
+    long double size, cost_size; /* of all that was added up for benefit and cost, without signs */
+    long double annual_cost;
 };
 struct present_values decision_worth(const struct decision_world *w, unsigned set);
 

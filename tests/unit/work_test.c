@@ -240,6 +240,7 @@ int main(int argc, char **argv)
     work_bad_tests(suite);
     work_protection_tests(suite);
     work_show_tests(suite);
+    work_filter_tests(suite);
     SRunner *runner = srunner_create(suite);
     srunner_run_all(runner, CK_NORMAL);
     int failed = srunner_ntests_failed(runner), run = srunner_ntests_run(runner);
