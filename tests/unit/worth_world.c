@@ -99,6 +99,22 @@ static const char *some_date(struct adding *x)
                         (int)random_range(&x->random, 1, 28));
 }
 
+/* The option but for renewals, commissioning, worth at the end and what it settles: those are told
+ * apart in weigh_world.h. */
+static struct node *plain_option(struct adding *x, const struct node *option)
+{
+    static const char *const skip[] = {"renewed", "early", "residual", "combine"};
+    struct node *plain = map(x);
+    for (size_t i = 0; i < option->n; i++) {
+        bool skipped = false;
+        for (size_t k = 0; k < sizeof skip / sizeof *skip; k++)
+            skipped = skipped || text_equal(option->pairs[i].key, skip[k]);
+        if (!skipped)
+            node_set(x->arena, plain, option->pairs[i].key, option->pairs[i].value);
+    }
+    return plain;
+}
+
 static void add_to_option(struct adding *x, struct node *option)
 {
     if (!one_in(x, 3)) {
@@ -161,8 +177,10 @@ struct node *worth_register(struct arena *a, uint64_t seed)
     struct node *hazards = section(root, "hazards"), *options = section(root, "options");
     for (size_t i = 0; i < hazards->n; i++)
         add_to_hazard(&x, hazards->pairs[i].value);
-    for (size_t i = 0; i < options->n; i++)
+    for (size_t i = 0; i < options->n; i++) {
+        options->pairs[i].value = plain_option(&x, options->pairs[i].value);
         add_to_option(&x, options->pairs[i].value);
+    }
     if (one_in(&x, 3))
         add_state(&x, root);
     if (!one_in(&x, 4))

@@ -99,6 +99,7 @@ struct summing {
     enum property property;
     const char *of;
     long double interest;
+    long double later; /* years from the middle of a year to when its amounts are paid */
     struct worth_sum sum;
 };
 
@@ -107,7 +108,7 @@ static void add_piece(struct summing *s, const struct compiled *now, const struc
 {
     for (int year = (int)p.from; year < p.to; year++) {
         long double a = fmax(p.from, year), b = fmin(p.to, year + 1);
-        long double paid = (b - a) * powl(1 + s->interest, -(a + b) / 2);
+        long double paid = (b - a) * powl(1 + s->interest, -(a + b) / 2 - s->later);
         long double before = does(s->l, now, s->property, s->of, year);
         long double after = does(s->l, then, s->property, s->of, year);
         s->sum.avoided += (before - after) * paid;
@@ -136,6 +137,7 @@ struct worth_sum worth_present(struct loaded *l, const struct weighing *w,
 {
     struct summing s = {.l = l, .property = p, .of = of};
     s.interest = expr_constant(l->model->settings->discount->expr);
+    s.later = l->model->settings->yearly_amounts == YEARLY_END_OF_YEAR ? 0.5L : 0;
     for (size_t i = 0; i < w->hazards.n; i++)
         add_hazard(&s, w, x, w->hazards.at[i].id);
     return s.sum;
