@@ -110,8 +110,7 @@ static const char *damage_words(struct job *j, figure_id id)
     const struct figure *g = figure_at(j->figures, id);
     const char *who = NULL;
     switch (g->property) {
-    case PROPERTY_CATEGORY:
-        return arena_printf(j->arena, "the category %s, whoever bears it", g->q1);
+    case PROPERTY_CATEGORY: return arena_printf(j->arena, "the category %s", g->q1);
     case PROPERTY_BORNE: who = g->q1; break;
     case PROPERTY_NET:
     case PROPERTY_BENEFIT:

@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What was thought of: alternatives that make customers worse off, that avoid nothing, that pay for
- * themselves; groups that only an option puts at risk; hazards that cannot be computed; registers
- * without perspectives, customers or groups. All worked out by hand: a horizon of 2 a at 25 % per a,
- * so that 1 a year from the start is worth A = 1.25^-0.5 + 1.25^-1.5 = 1.8 / sqrt(1.25). */
+/* What was thought of: alternatives that make customers worse off, that avoid nothing, that pay
+ * for themselves; groups that only an option puts at risk; hazards that cannot be computed;
+ * registers without perspectives, customers or groups. All worked out by hand: a horizon of 2 a at
+ * 25 % per a, so that 1 a year from the start is worth
+ * A = 1.25^-0.5 + 1.25^-1.5 = 1.8 / sqrt(1.25). */
 #include <math.h>
 #include <string.h>
 
