@@ -234,12 +234,6 @@ static ohmen_status compile_one_reference(struct figures *f, const struct varian
     return status;
 }
 
-/* States and common causes are compiled by who needs them; a group only tells how many. */
-static bool is_compiled_first(enum kind k)
-{
-    return kinds[k].computes && k != KIND_STATE && k != KIND_COMMON_CAUSE && k != KIND_GROUP;
-}
-
 /* Only what stands at this path of the object; NULL: everything. */
 ohmen_status compile_references_at(struct figures *f, const struct variant *v,
                                    const struct object *o, const char *path, ohmen_error *e)
@@ -247,7 +241,8 @@ ohmen_status compile_references_at(struct figures *f, const struct variant *v,
     for (size_t i = 0; i < o->refs.n; i++) {
         const struct reference *r = &o->refs.at[i];
         const struct object *to = model_find(v->model, r->id);
-        if (r->trace || r->later || !to || !is_compiled_first(to->kind) ||
+        if (r->trace || r->later || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
+            to->kind == KIND_GROUP || to->kind == KIND_COMMON_CAUSE ||
             (path && !text_equal(path, r->path)))
             continue;
         ohmen_status status = compile_one_reference(f, v, o, r, to, e);
