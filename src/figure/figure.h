@@ -91,6 +91,11 @@
     X(NET, "net-present-value", "what an alternative is worth against doing nothing")              \
     X(BENEFIT, "benefit", "present value of the damage that an alternative avoids")                \
     X(AVOIDS, "avoids", "risk that an alternative avoids in a mean year, once in service")         \
+    X(AVOIDED, "avoided", "damage that an alternative avoids in one year, not discounted")         \
+    X(INVESTED, "invested", "what is invested in an alternative in one year, not discounted")      \
+    X(CUMULATED, "cumulated",                                                                      \
+      "present value of all that an alternative avoids less all that it "                          \
+      "costs, until the end of a year")                                                            \
     X(AVOIDS_TIME, "avoids-customer-time",                                                         \
       "customer time without supply that an alternative avoids in a mean year")                    \
     X(AVOIDS_FATALITIES, "avoids-fatalities", "deaths that an alternative avoids in a mean year")  \
@@ -143,7 +148,7 @@ struct span {
     bool yearly;             /* windows are years of the horizon */
     uint32_t years;          /* of the horizon */
     const uint32_t *of_year; /* yearly: the window that holds in each */
-    double from;             /* yearly: what there was not before; its year is a window from there */
+    double from;             /* yearly: the beginning; its year is a window from there */
 };
 
 /* What an element shows to common causes and to the report. */

@@ -9,6 +9,9 @@
 #include "figure/horizon.h"
 #include "work/filter.h"
 
+/* The share of a hazard's risk from which an outcome has a mark in the grid. */
+static const double LEAST_SHARE_OF_RISK = 0.1;
+
 const char *object_name(const struct object *o)
 {
     static const char *const keys[] = {"name", "title", "question"};
@@ -59,6 +62,47 @@ static const char *entry_words(struct job *j, const struct store_entry *x)
                         utc_write(utc, x->utc), x->author);
 }
 
+/* "2 hazards", "1 hazard"; nothing for none. */
+static void add_number(struct text *t, size_t n, const char *what)
+{
+    if (n)
+        text_printf(t, "%s%zu %s%s", t->n ? ", " : "", n, what, n > 1 ? "s" : "");
+}
+
+static size_t count_left_out(const struct job *j, enum kind kind)
+{
+    size_t n = 0;
+    const struct objects *all = &j->model->of[kind];
+    for (size_t i = 0; i < j->not_computed.n; i++)
+        for (size_t k = 0; k < all->n; k++)
+            n += text_equal(all->at[k]->id, j->not_computed.at[i].id);
+    return n;
+}
+
+/* What the figures leave out: who signs them must know. */
+static const char *not_included(struct job *j)
+{
+    struct unused u = {0};
+    struct text t;
+    text_init(&t, j->arena);
+    figures_unused(j->arena, j->model, &u);
+    add_number(&t, count_left_out(j, KIND_HAZARD), "hazard");
+    add_number(&t, count_left_out(j, KIND_DECISION), "decision");
+    if (t.n)
+        text_add(&t, " without figures");
+    if (u.n)
+        text_printf(&t,
+                    "%sfields of %zu object%s that are stored, but not used (see the last chapter)",
+                    t.n ? "; " : "", u.n, u.n > 1 ? "s" : "");
+    return t.n ? text_str(&t) : "nothing";
+}
+
+void part_signatures(struct job *j)
+{
+    static const char *const roles[] = {"Prepared", "Checked", "Approved"};
+    report_signatures(j->report, "signatures", NULL, roles, sizeof roles / sizeof *roles);
+}
+
 void part_title_block(struct job *j, ohmen_error *e)
 {
     const struct register_settings *s = j->model->settings;
@@ -84,6 +128,7 @@ void part_title_block(struct job *j, ohmen_error *e)
                       date_write(date, horizon_start(s))));
     if (j->query.site)
         pair(j, b, "Only site", j->query.site);
+    pair(j, b, "Not included", not_included(j));
 }
 
 /* --- hazards --- */
@@ -268,22 +313,74 @@ void part_criteria_lines(struct job *j, struct block *grid)
                       arena_printf(j->arena, "intolerable above %s", money_rate(j, x)), x, "i");
 }
 
+static struct grid_mark *add_mark(struct job *j, struct block *b, const char *label,
+                                  const char *name, figure_id frequency, figure_id damage)
+{
+    struct grid_mark *m =
+        grid_add_mark(j->report, b, label, name, figure_value(j->figures, frequency),
+                      figure_value(j->figures, damage));
+    m->frequency_figure = figure_name(j->figures, j->arena, frequency);
+    m->damage_figure = figure_name(j->figures, j->arena, damage);
+    return m;
+}
+
+/* The outcomes of a hazard that do damage, by falling risk; *n of them. */
+static struct ranked *outcomes_by_risk(struct job *j, const struct hazard_exports *x, size_t *n)
+{
+    struct ranked *all = NEW_ARRAY(j->arena, x->n_outcomes, struct ranked);
+    *n = 0;
+    for (size_t k = 0; k < x->n_outcomes; k++) {
+        double risk = figure_value(j->figures, x->risk_of[k]);
+        if (risk > 0)
+            all[(*n)++] = (struct ranked){risk, k};
+    }
+    if (*n > 1)
+        qsort(all, *n, sizeof *all, by_falling_risk);
+    return all;
+}
+
+/* "burnt: Switchboard burnt out" of a hazard's outcome k. */
+static const char *outcome_words(struct job *j, const struct compiled *c, size_t k)
+{
+    const struct hazard *h = c->object->data;
+    const char *name = ROW(struct outcome, h->outcomes, k)->name;
+    return name ? arena_printf(j->arena, "%s %s: %s", c->id, h->outcomes.keys[k], name)
+                : arena_printf(j->arena, "%s %s", c->id, h->outcomes.keys[k]);
+}
+
+/* Hollow marks, "3a", for the outcomes that hold enough of the risk of mark `whole`: its
+ * mean damage hides that they are rare and ruinous. One outcome is the hazard itself. */
+static void add_outcomes(struct job *j, struct block *b, const struct compiled *c, int whole)
+{
+    const struct hazard_exports *x = exports(c);
+    size_t n;
+    struct ranked *by = outcomes_by_risk(j, x, &n);
+    const char *rank = b->grid->marks.at[whole].label;
+    double least = LEAST_SHARE_OF_RISK * risk_of(j, c);
+    for (size_t i = 0; n > 1 && i < n && by[i].risk >= least; i++) {
+        size_t k = by[i].index;
+        const char *label = arena_printf(j->arena, "%s%c", rank, (char)('a' + i));
+        add_mark(j, b, label, outcome_words(j, c, k), x->frequency_of[k], x->damage_of[k])
+            ->part_of = whole;
+    }
+}
+
 void part_hazard_grid(struct job *j, const struct hazards *h)
 {
-    struct report *r = j->report;
-    struct block *b =
-        report_grid(r, "grid", "Hazards by frequency and damage", j->model->settings->currency);
+    struct block *b = report_grid(j->report, "grid", "Hazards by frequency and damage",
+                                  j->model->settings->currency);
+    b->grid->wholes = "a hazard";
+    b->grid->parts = "an outcome with at least 10 % of its hazard's risk";
     part_criteria_lines(j, b);
     size_t *order = by_risk(j, h);
     for (size_t i = 0; i < h->n; i++) {
         const struct compiled *c = h->at[order[i]];
         const struct hazard_exports *x = exports(c);
-        struct grid_mark *m = grid_add_mark(
-            r, b, arena_printf(j->arena, "%zu", i + 1),
-            arena_printf(j->arena, "%s %s", c->id, object_name(c->object)),
-            figure_value(j->figures, x->damaging), figure_value(j->figures, x->damage));
-        m->frequency_figure = figure_name(j->figures, j->arena, x->damaging);
-        m->damage_figure = figure_name(j->figures, j->arena, x->damage);
+        int whole = (int)b->grid->marks.n;
+        add_mark(j, b, arena_printf(j->arena, "%zu", i + 1),
+                 arena_printf(j->arena, "%s %s", c->id, object_name(c->object)), x->damaging,
+                 x->damage);
+        add_outcomes(j, b, c, whole);
     }
 }
 

@@ -7,7 +7,6 @@ struct whole {
     struct hazards hazards;
     struct protection protection;
     ARRAY(struct weighing *) decisions;
-    ARRAY(const char *) trees; /* decisions that are trees */
 };
 
 static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_error *e)
@@ -17,7 +16,8 @@ static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_erro
         const struct decision *d = all->at[i]->data;
         struct weighing *x;
         if (d->choose.n) {
-            *array_push(j->arena, &w->trees) = all->at[i]->id;
+            *array_push(j->arena, &j->not_computed) = (struct not_computed){
+                all->at[i]->id, "a decision tree, which this version stores but does not evaluate"};
             continue;
         }
         ohmen_error why = OHMEN_ERROR_INIT;
@@ -157,10 +157,6 @@ static void part_decisions(struct job *j, struct whole *w)
         part_weighing(j, x);
         part_weighing_grid(j, x);
     }
-    for (size_t i = 0; i < w->trees.n; i++)
-        report_note(j->report, arena_printf(j->arena, "tree-%s", w->trees.at[i]),
-                    "%s is a decision tree, which this version stores but does not evaluate.",
-                    w->trees.at[i]);
 }
 
 static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
@@ -179,6 +175,7 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     part_title_block(j, e);
+    part_signatures(j);
     part_summary(j, &w);
     part_not_computed(j);
     report_heading(j->report, 2, "Hazards");

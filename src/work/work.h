@@ -115,7 +115,9 @@ const char *unit_per_year(struct job *j);        /* "EUR/a" */
 /* Whose damage counts: "every category", "what society bears". */
 const char *perspective_words(struct job *j);
 
+/* Behind the figures, for it says what is not among them. */
 void part_title_block(struct job *j, ohmen_error *e);
+void part_signatures(struct job *j);
 void part_hazards(struct job *j, const struct hazards *h);
 void part_hazard_grid(struct job *j, const struct hazards *h);
 /* What is left out because it cannot be evaluated, and why; nothing when all could. */
@@ -180,6 +182,11 @@ const char *turn_sentence(struct job *j, const struct weighing *w);
 void part_turn_head(struct job *j, const struct turn *t);
 void part_turn_method(struct job *j, const struct turn *t);
 struct consumed turn_consumed(struct job *j, const struct turn *t);
+
+/* The best alternative year by year; nothing where that is to do nothing. The weighing is ranked. */
+void part_flow(struct job *j, struct weighing *w);
+/* When an alternative that is not doing nothing has paid for itself. */
+const char *payback_sentence(struct job *j, struct weighing *w, const struct alternative *x);
 
 /* What a decision rests on: inputs by how much they move it, and their sources. It is ranked. */
 void part_rests_on(struct job *j, const struct weighing *w);

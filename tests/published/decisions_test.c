@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Three decisions worked out by hand in docs/methods.md, (d) to (f), against the figures of their
+/* Three decisions worked out by hand in docs/methods.md, (e) to (g), against the figures of their
  * register (decisions.txt, which explains its rows, and the register's folder on the command
  * line). */
 #include <check.h>

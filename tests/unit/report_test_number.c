@@ -22,10 +22,19 @@ static const struct { double x; enum number_style style; const char *text;
     {0.0123, STYLE_PLAIN, "0.0123"},
     {0.00123, STYLE_PLAIN, "1.23e-3"},
     {0.009994, STYLE_PLAIN, "9.99e-3"},
-    {0.009996, STYLE_PLAIN, "0.01"},
+    {0.009996, STYLE_PLAIN, "0.0100"},
+    {0.01, STYLE_PLAIN, "0.01"},
+    {1.398, STYLE_PLAIN, "1.40"}, /* rounded: all three digits; exact: no zeros at the end */
+    {1.4, STYLE_PLAIN, "1.4"},
+    {12.02, STYLE_PLAIN, "12.0"},
+    {12, STYLE_PLAIN, "12"},
+    {0.1 + 0.2, STYLE_PLAIN, "0.3"}, /* 0.30000000000000004: the error of a sum is no digit */
+    {0.30000000003, STYLE_PLAIN, "0.300"},
+    {119.97, STYLE_PLAIN, "120"},
+    {1.0004, STYLE_RATIO, "1.00"},
     {12345, STYLE_PLAIN, "12300"},
     {99949, STYLE_PLAIN, "99900"},
-    {99950, STYLE_PLAIN, "1e5"}, /* a tie: half to even gives 1000e2 */
+    {99950, STYLE_PLAIN, "1.00e5"}, /* a tie: half to even gives 1000e2 */
     {100000, STYLE_PLAIN, "1e5"},
     {123456789, STYLE_PLAIN, "1.23e8"},
     {1.125, STYLE_PLAIN, "1.12"}, /* exactly half: to even */
@@ -33,12 +42,15 @@ static const struct { double x; enum number_style style; const char *text;
     {2.385, STYLE_PLAIN, "2.38"}, /* the double is 2.38499999999999978684 */
     {1e-12, STYLE_PLAIN, "1e-12"},
     {5e-324, STYLE_PLAIN, "4.94e-324"},
-    {1.7976931348623157e308, STYLE_PLAIN, "1.8e308"},
+    {1.7976931348623157e308, STYLE_PLAIN, "1.80e308"},
     {-2.5e-7, STYLE_PLAIN, "-2.5e-7"},
     {INFINITY, STYLE_PLAIN, "infinite"},
     {-INFINITY, STYLE_PLAIN, "-infinite"},
     {NAN, STYLE_PLAIN, "undefined"},
     {1234567, STYLE_MONEY, "1230000"},
+    {0.00895, STYLE_MONEY, "0.00895"},
+    {0.000895, STYLE_MONEY, "8.95e-4"},
+    {-0.03102, STYLE_MONEY, "-0.0310"},
     {2.94e-3, STYLE_FREQUENCY, "2.94e-3"},
     {0.0213, STYLE_FREQUENCY, "2.13e-2"},
     {0.5, STYLE_FREQUENCY, "0.5"},
@@ -106,11 +118,19 @@ END_TEST
 
 START_TEST(amounts)
 {
-    static const struct { double x; const char *unit, *text; } cases[] = {
-        {12345, "EUR/a", "12.3 kEUR/a"}, {999.4, "EUR", "999 EUR"}, {999.7, "EUR", "1 kEUR"},
-        {0, "EUR", "0 EUR"},             {-4.2e6, "EUR", "-4.2 MEUR"}, {3e9, "CHF", "3 GCHF"},
-        {0.5, "EUR", "0.5 EUR"},         {2e12, "EUR", "2000 GEUR"}, {12345, "", "12300"},
-        {1e-5, "EUR/a", "1e-5 EUR/a"},   {1e15, "EUR", "1e6 GEUR"}};
+    static const struct { double x; const char *unit, *text;
+    } cases[] = {{12345, "EUR/a", "12.3 kEUR/a"},
+                 {999.4, "EUR", "999 EUR"},
+                 {999.7, "EUR", "1.00 kEUR"},
+                 {0, "EUR", "0 EUR"},
+                 {-4.2e6, "EUR", "-4.2 MEUR"},
+                 {3e9, "CHF", "3 GCHF"},
+                 {0.5, "EUR", "0.5 EUR"},
+                 {2e12, "EUR", "2000 GEUR"},
+                 {12345, "", "12300"},
+                 {1e-5, "EUR/a", "1e-5 EUR/a"},
+                 {1e15, "EUR", "1000000 GEUR"},
+                 {0.00895, "EUR", "0.00895 EUR"}};
     struct arena *a = arena_new(NULL);
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++)
         ck_assert_str_eq(money_text(a, cases[i].x, cases[i].unit), cases[i].text);
@@ -120,9 +140,10 @@ END_TEST
 
 START_TEST(prefix_of_a_column)
 {
-    static const struct { int largest, smallest, shift; } cases[] = {
-        {2, 0, 0}, {3, 3, 3}, {6, 4, 6}, {6, 2, 3}, {9, 6, 6}, {12, 9, 9}, {9, 2, 9},
-        {4, -5, 3}, {-400, 400, 0}, {7, 3, 3}, {6, -2, 6}};
+    static const struct { int largest, smallest, shift;
+    } cases[] = {{2, 0, 0},  {2, -9, 0}, {3, 3, 3}, {3, 2, 3},  {3, 1, 0},      {4, 0, 3},
+                 {4, -5, 3}, {6, 5, 6},  {6, 4, 3}, {6, 2, 3},  {6, -2, 3},     {7, 3, 6},
+                 {9, 6, 6},  {9, 2, 6},  {9, 8, 9}, {12, 9, 9}, {-400, 400, 0}, {14, 3, 9}};
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++)
         ck_assert_int_eq(money_shift(cases[i].largest, cases[i].smallest), cases[i].shift);
     ck_assert_str_eq(money_prefix(0), "");
