@@ -90,6 +90,8 @@ static const struct customary {
     double per_base; /* of these in one of the base unit */
 } customary[] = {
     {PROPERTY_CUSTOMER_TIME, "h", 8760},
+    {PROPERTY_AVOIDS_TIME, "h", 8760},
+    {PROPERTY_PRESENT_TIME, "h", 8760},
     {PROPERTY_SAIDI, "min", 525600},
     {PROPERTY_CAIDI, "min", 525600},
     {PROPERTY_NOT_SUPPLIED, "MWh", 8.76}, /* of kWa */
@@ -120,6 +122,10 @@ const char *figure_display(struct job *j, figure_id id, double *shown)
     if (c) {
         *shown = value * c->per_base;
         return c->unit;
+    }
+    if (g->property == PROPERTY_PER_HOUR) {
+        *shown = value / HOURS_PER_YEAR;
+        return arena_printf(j->arena, "%s/h", j->model->settings->currency);
     }
     if (g->text)
         s = last_stated(j, g->text, d);

@@ -201,7 +201,8 @@ const char *display_unit(struct job *j, struct dim d, double value, double *show
 /* How its value is printed in that unit. */
 enum number_style figure_style(struct job *j, figure_id id);
 
-/* The same for a figure: a stated quantity is shown in the unit that its author used. */
+/* The same for a figure: a stated quantity is shown in the unit that its author used, customer
+ * time in hours. */
 const char *figure_display(struct job *j, figure_id id, double *shown);
 
 /* A value of a figure, which need not be its own, in words with that unit. */

@@ -116,7 +116,8 @@ static const double ROUNDING = 1e-9;
 static void together_row(struct job *j, struct block *b, const struct alternative *x)
 {
     struct row *row = block_row(j->report, b);
-    double together = value_of(j, x->together), size = fabs(value_of(j, x->present_damage));
+    double together = value_of(j, x->together);
+    double size = fabs(value_of(j, x->present_damage)) + fabs(value_of(j, x->benefit));
     if (fabs(together) <= ROUNDING * size)
         together = 0;
     row_text(j->report, row, x->name);

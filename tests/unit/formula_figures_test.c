@@ -137,7 +137,7 @@ static long double lost(struct figures *f, struct arena *a, figure_id id)
 {
     enum property p = figure_at(f, id)->property;
     long double largest = 0;
-    if (p != PROPERTY_BENEFIT && p != PROPERTY_NET)
+    if (p != PROPERTY_BENEFIT && p != PROPERTY_NET && p != PROPERTY_TOGETHER)
         return 1e-300L;
     const struct asked *x = ask_of(f, a, id);
     for (size_t i = 0; i < x->inputs.n; i++)
