@@ -23,6 +23,15 @@ struct exposed {
     struct amount *death, *injury, *fatalities;
 };
 
+/* What an outcome states of a group, as a figure. */
+static node_id stated(struct counting *c, enum property p, size_t k, const char *group,
+                      const struct quantity *q)
+{
+    return counting_node(c, compiled_add(&c->b, p, c->data->outcomes.keys[k], group,
+                                         compile_quantity(&c->b, q), c->data->source,
+                                         quantity_reads(c->f, q)));
+}
+
 static struct exposed exposed_of(struct counting *c, const char *group)
 {
     const struct group_of_people *g = model_get(c->b.variant->model, KIND_GROUP, group);
@@ -32,13 +41,15 @@ static struct exposed exposed_of(struct counting *c, const char *group)
         const struct harm *h = harm_of(counting_outcome(c, k), group);
         if (!h)
             continue;
-        node_id there = compile_quantity(&c->b, h->present);
+        node_id there = stated(c, PROPERTY_PRESENT, k, group, h->present);
         if (h->death) {
-            x.death[k].whole = counting_product(c, there, compile_quantity(&c->b, h->death));
+            x.death[k].whole =
+                counting_product(c, there, stated(c, PROPERTY_DIES, k, group, h->death));
             x.fatalities[k].whole = counting_product(c, x.death[k].whole, persons);
         }
         if (h->injury)
-            x.injury[k].whole = counting_product(c, there, compile_quantity(&c->b, h->injury));
+            x.injury[k].whole =
+                counting_product(c, there, stated(c, PROPERTY_INJURED, k, group, h->injury));
     }
     return x;
 }

@@ -33,7 +33,20 @@ static node_id if_sustained(struct counting *c, node_id lasts, node_id x, bool s
     return graph_op(g, OP_LOOKUP, 5, args);
 }
 
-/* How long each row of an outcome lasts, compiled once. */
+/* A stated quantity of a row, as a figure; compiled once. */
+static node_id stated(struct counting *c, enum property p, size_t k, size_t row,
+                      const struct quantity *q)
+{
+    const char *outcome = c->data->outcomes.keys[k];
+    const char *key = counting_outcome(c, k)->interruptions.keys[row];
+    figure_id known = compiled_figure(c->f, c->b.unit, p, outcome, key);
+    if (known == FIGURE_NONE)
+        known = compiled_add(&c->b, p, outcome, key, compile_quantity(&c->b, q), c->data->source,
+                             quantity_reads(c->f, q));
+    return counting_node(c, known);
+}
+
+/* How long each row of an outcome lasts. */
 static node_id **row_times(struct counting *c)
 {
     node_id **all = NEW_ARRAY(c->f->arena, c->data->outcomes.n, node_id *);
@@ -41,7 +54,7 @@ static node_id **row_times(struct counting *c)
         const struct rows *rows = &counting_outcome(c, k)->interruptions;
         all[k] = NEW_ARRAY(c->f->arena, rows->n, node_id);
         for (size_t i = 0; i < rows->n; i++)
-            all[k][i] = compile_quantity(&c->b, ROW(struct interruption, *rows, i)->lasts);
+            all[k][i] = stated(c, PROPERTY_LASTS, k, i, ROW(struct interruption, *rows, i)->lasts);
     }
     return all;
 }
@@ -54,11 +67,17 @@ static node_id of_site(const struct counting *c, enum property p)
     return id == FIGURE_NONE ? NODE_NONE : counting_node(c, id);
 }
 
-static node_id row_load(struct counting *c, const struct interruption *row)
+static const struct interruption *row_at(const struct counting *c, size_t k, size_t i)
 {
+    return ROW(struct interruption, counting_outcome(c, k)->interruptions, i);
+}
+
+static node_id row_load(struct counting *c, size_t k, size_t i)
+{
+    const struct interruption *row = row_at(c, k, i);
     if (interruption_is_whole(row))
         return of_site(c, PROPERTY_LOAD);
-    return row->load ? compile_quantity(&c->b, row->load) : NODE_NONE;
+    return row->load ? stated(c, PROPERTY_LOAD, k, i, row->load) : NODE_NONE;
 }
 
 static node_id row_customers(struct counting *c, const struct interruption *row)
@@ -69,14 +88,13 @@ static node_id row_customers(struct counting *c, const struct interruption *row)
 }
 
 /* What a row counts for in one of the four sums; NODE_NONE: nothing. */
-static node_id row_amount(struct counting *c, enum property p, const struct interruption *row,
-                          node_id lasts)
+static node_id row_amount(struct counting *c, enum property p, size_t k, size_t i, node_id lasts)
 {
     if (p == PROPERTY_NOT_SUPPLIED) {
-        node_id load = row_load(c, row);
+        node_id load = row_load(c, k, i);
         return load == NODE_NONE ? load : counting_product(c, load, lasts);
     }
-    node_id customers = row_customers(c, row);
+    node_id customers = row_customers(c, row_at(c, k, i));
     if (customers == NODE_NONE)
         return customers;
     if (p == PROPERTY_CUSTOMER_TIME)
@@ -93,7 +111,7 @@ static figure_id add_interruption(struct counting *c, enum property p, node_id *
         node_id *nodes = NEW_ARRAY(c->f->arena, rows->n, node_id);
         size_t n = 0;
         for (size_t i = 0; i < rows->n; i++) {
-            node_id x = row_amount(c, p, ROW(struct interruption, *rows, i), times[k][i]);
+            node_id x = row_amount(c, p, k, i, times[k][i]);
             if (x != NODE_NONE)
                 nodes[n++] = x;
         }

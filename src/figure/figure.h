@@ -67,7 +67,11 @@
     X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
     X(RISK, "risk", "frequency times damage, of an outcome or a hazard")                           \
     X(CUSTOMERS, "customers", "customers supplied from a site")                                    \
-    X(LOAD, "load", "load supplied from a site")                                                   \
+    X(LOAD, "load", "load supplied from a site, or that an outcome interrupts")                    \
+    X(LASTS, "lasts", "how long an interruption of an outcome lasts")                              \
+    X(PRESENT, "present", "probability that a given person of a group is there")                   \
+    X(DIES, "death", "probability of death of a person who is there")                              \
+    X(INJURED, "injury", "probability of injury of a person who is there")                         \
     X(INTERRUPTIONS, "interruptions", "customers interrupted in a year, for long (IEEE 1366)")     \
     X(MOMENTARY, "momentary-interruptions", "customers interrupted in a year, for a short time")   \
     X(CUSTOMER_TIME, "customer-time", "time without supply in a year, summed over customers")      \

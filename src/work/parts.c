@@ -340,8 +340,18 @@ static const char *outcome_words(struct job *j, const struct compiled *c, size_t
                 : arena_printf(j->arena, "%s %s", c->id, h->outcomes.keys[k]);
 }
 
+/* Closer than this share two points of a grid are one. */
+static const double NEAR = 0.1;
+
+static bool is_near(const struct job *j, figure_id a, figure_id b)
+{
+    double x = figure_value(j->figures, a), y = figure_value(j->figures, b);
+    return fabs(x - y) <= NEAR * y;
+}
+
 /* Hollow marks, "3a", for the outcomes that hold enough of the risk of mark `whole`: its
- * mean damage hides that they are rare and ruinous. One outcome is the hazard itself. */
+ * mean damage hides that they are rare and ruinous. What lies where the hazard lies is the hazard
+ * itself. */
 static void add_outcomes(struct job *j, struct block *b, const struct compiled *c, int whole)
 {
     const struct hazard_exports *x = exports(c);
@@ -351,6 +361,8 @@ static void add_outcomes(struct job *j, struct block *b, const struct compiled *
     double least = LEAST_SHARE_OF_RISK * risk_of(j, c);
     for (size_t i = 0; n > 1 && i < n && by[i].value >= least; i++) {
         size_t k = by[i].index;
+        if (is_near(j, x->frequency_of[k], x->damaging) && is_near(j, x->damage_of[k], x->damage))
+            continue;
         const char *label = arena_printf(j->arena, "%s%c", rank, (char)('a' + i));
         add_mark(j, b, label, outcome_words(j, c, k), x->frequency_of[k], x->damage_of[k])
             ->part_of = whole;
