@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The section of a decision: present values of damage and cost for each alternative. Beside the money
- * that the chosen perspective bears: what every perspective bears, customers without supply,
- * deaths. All hazards and options that it reads were compiled before. */
+/* The section of a decision: present values of damage and cost for each alternative, and beside the
+ * money that the chosen perspective bears what every perspective bears, customers without supply,
+ * and deaths. All hazards and options that it reads were compiled before. */
 #include "decide/worth.h"
 
 #include "decide/avoided.h"

@@ -180,7 +180,7 @@ void part_turn_head(struct job *j, const struct turn *t);
 void part_turn_method(struct job *j, const struct turn *t);
 struct consumed turn_consumed(struct job *j, const struct turn *t);
 
-/* The best alternative year by year; nothing where that is to do nothing. The weighing is ranked. */
+/* The best alternative year by year; nothing where that is to do nothing. It is ranked. */
 void part_flow(struct job *j, struct weighing *w);
 /* When an alternative that is not doing nothing has paid for itself. */
 const char *payback_sentence(struct job *j, struct weighing *w, const struct alternative *x);

@@ -74,7 +74,7 @@ static const struct { double x; enum number_style style; const char *text;
     {-98765, STYLE_GROUPED, "-98 800"},
     {100000, STYLE_GROUPED, "100 000"},
     {1234567, STYLE_GROUPED, "1 230 000"},
-    {999999999999, STYLE_GROUPED, "1e12"},
+    {999999999999, STYLE_GROUPED, "1.00e12"},
     {123456789012, STYLE_GROUPED, "123 000 000 000"},
     {1.39, STYLE_GROUPED, "1.39"},
     {0.0123, STYLE_GROUPED, "0.0123"},
