@@ -98,8 +98,8 @@ CREATE TABLE "site"( -- A place in the network; sites nest
     "id" TEXT NOT NULL, -- Id of the object
     "name" TEXT, -- Name of the place
     "in" TEXT, -- The site that this one is part of
-    "customers" INTEGER, -- Customers supplied from here
-    "load" TEXT, -- Load supplied from here
+    "customers" INTEGER, -- Customers supplied from here, at the sites in it too
+    "load" TEXT, -- Load supplied from here, at the sites in it too
     "note" TEXT, -- Anything else
     PRIMARY KEY("id")
 ) STRICT, WITHOUT ROWID;

@@ -152,6 +152,14 @@ ohmen_status ohmen_hazards(ohmen_register *r, const ohmen_query *q, ohmen_report
  * causes. */
 ohmen_status ohmen_protection(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
                               ohmen_error *e);
+/* Supply: indices of interruption (IEEE 1366), the hazards that interrupt most, and sites; with a
+ * site, what it contributes. */
+ohmen_status ohmen_supply(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                          ohmen_error *e);
+/* People: individual risk of each group over all hazards, its highest year, its place among the
+ * criteria, and what it comes from. OHMEN_USAGE for a query with a site. */
+ohmen_status ohmen_people(ohmen_register *r, const ohmen_query *q, ohmen_report **out,
+                          ohmen_error *e);
 /* Everything of one kind ("elements"), as a table. kind: a section of the documents. */
 ohmen_status ohmen_list(ohmen_register *r, const ohmen_query *q, const char *kind,
                         ohmen_report **out, ohmen_error *e);

@@ -102,6 +102,28 @@ const struct command commands[] = {
              "common causes. It is a chapter of the report.",
      .example = "ohmen -r skerry.ohmen protection --width 80",
      .run = command_protection},
+    {"supply",
+     JOB_RISK,
+     {0},
+     .options = READING_HAZARDS,
+     .brief = "interruptions of supply: indices, hazards, sites",
+     .text = "Prints the indices of interruption (SAIFI, SAIDI, CAIDI, ASAI, MAIFI after IEEE "
+             "1366, and the energy not supplied), the hazards that interrupt most, and the risk "
+             "and the interruptions at each site. With --site it prints what that site "
+             "contributes. It is a chapter of the report.",
+     .example = "ohmen -r skerry.ohmen supply --width 80",
+     .run = command_supply},
+    {"people",
+     JOB_RISK,
+     {0},
+     .options = READING,
+     .brief = "harm to people: individual risk of each group",
+     .text = "Prints for each group of people the probability per year that a given person of it "
+             "dies, over all hazards, as a mean over the horizon and in the highest year, with its "
+             "place among the criteria for people, and the outcomes that it comes from. It is a "
+             "chapter of the report.",
+     .example = "ohmen -r skerry.ohmen people --width 80",
+     .run = command_people},
     {"list",
      JOB_RISK,
      {"KIND", 1, 1, "a section of the documents, such as elements, schemes, hazards or options"},

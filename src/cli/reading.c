@@ -104,6 +104,20 @@ static ohmen_status make_protection(ohmen_register *r, const struct args *args, 
     return ohmen_protection(r, &query, out, e);
 }
 
+static ohmen_status make_supply(ohmen_register *r, const struct args *args, ohmen_report **out,
+                                ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_supply(r, &query, out, e);
+}
+
+static ohmen_status make_people(ohmen_register *r, const struct args *args, ohmen_report **out,
+                                ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_people(r, &query, out, e);
+}
+
 static ohmen_status make_list(ohmen_register *r, const struct args *args, ohmen_report **out,
                               ohmen_error *e)
 {
@@ -186,6 +200,16 @@ ohmen_status command_hazards(const struct call *call, ohmen_error *e)
 ohmen_status command_protection(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_protection, e);
+}
+
+ohmen_status command_supply(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_supply, e);
+}
+
+ohmen_status command_people(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_people, e);
 }
 
 ohmen_status command_list(const struct call *call, ohmen_error *e)

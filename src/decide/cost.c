@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Figures of options: investments with their renewals, running cost, what they are worth at the end,
- * and the present value of all. Owns nothing. */
+/* Figures of options: investments with their renewals, running cost, what they are worth at the
+ * end, and the present value of all. Owns nothing. */
 #include "decide/cost.h"
 
 #include <math.h>
@@ -16,22 +16,26 @@ static const double SAME_INSTANT = 1e-9;
 
 /* --- present values --- */
 
+node_id cost_paid(const struct money *m, const struct payment *p)
+{
+    bool at_once = p->year == 0;
+    return at_once ? p->amount
+                   : graph_op2(m->f->graph, OP_MULTIPLY, p->amount, money_factor(m, p->year));
+}
+
 struct parts ARRAY_BODY(node_id);
 
-/* One option, and what its present value is made of. */
+/* One option, and what is paid for it. */
 struct costing {
     const struct money *m;
     const struct option *option;
     struct life life;
-    struct parts parts;
+    struct payments once;
 };
 
 static void add_at(struct costing *c, node_id amount, double year)
 {
-    struct graph *g = c->m->f->graph;
-    bool at_once = year == 0;
-    *array_push(c->m->f->arena, &c->parts) =
-        at_once ? amount : graph_op2(g, OP_MULTIPLY, amount, money_factor(c->m, year));
+    *array_push(c->m->f->arena, &c->once) = (struct payment){year, amount};
 }
 
 /* What is paid behind the horizon is no cost. */
@@ -48,22 +52,14 @@ static void add_renewals(struct costing *c, node_id invest)
 {
     const struct register_settings *s = c->m->f->base->settings;
     day on = c->option->invest->on;
-    double first = 0;
-    if (on != DAY_NONE)
-        first = fmin(horizon_years(s, on), timeline_calendar_year(s, on) + LAST_DAY);
+    double first = on == DAY_NONE ? 0 : horizon_years(s, on);
+    if (first > 0)
+        first = fmin(first, timeline_year(s, on) + LAST_DAY);
     for (size_t k = 1; k <= life_renewals(&c->life); k++) {
         double year = floor(first + (double)k * c->life.length + SAME_INSTANT);
         if (year >= 0 && year < c->m->horizon)
             add_at(c, invest, year);
     }
-}
-
-static void add_running(struct costing *c, node_id running)
-{
-    double from = fmax(c->life.begin, 0), to = life_end(&c->life);
-    if (from < to)
-        *array_push(c->m->f->arena, &c->parts) =
-            graph_op2(c->m->f->graph, OP_MULTIPLY, running, money_annuity(c->m, from, to));
 }
 
 /* What has left service before the end is not worth anything then. */
@@ -74,28 +70,61 @@ static void add_residual(struct costing *c, node_id residual)
         add_at(c, graph_op1(g, OP_NEGATE, residual), c->m->horizon);
 }
 
-static node_id node_of(const struct building *b, enum property p)
+static node_id node_of(const struct figures *f, const struct compiled *option, enum property p)
 {
-    figure_id id = compiled_figure(b->figures, b->unit, p, NULL, NULL);
-    return id == FIGURE_NONE ? NODE_NONE : figure_at(b->figures, id)->node;
+    figure_id id = compiled_figure(f, option, p, NULL, NULL);
+    return id == FIGURE_NONE ? NODE_NONE : figure_at(f, id)->node;
 }
 
-static void add_present(struct building *b, const struct money *m, const struct object *o)
+/* The option's figures are there already. */
+static struct payments paid_once(const struct money *m, const struct compiled *option)
 {
-    struct costing c = {m, o->data, life_of(b->figures, o->id), {0}};
-    node_id invest = node_of(b, PROPERTY_INVEST), running = node_of(b, PROPERTY_RUNNING);
-    node_id residual = node_of(b, PROPERTY_RESIDUAL);
+    struct costing c = {m, option->object->data, life_of(m->f, option->id), {0}};
+    node_id invest = node_of(m->f, option, PROPERTY_INVEST);
+    node_id residual = node_of(m->f, option, PROPERTY_RESIDUAL);
     if (invest != NODE_NONE) {
         add_first(&c, invest);
         add_renewals(&c, invest);
     }
-    if (running != NODE_NONE)
-        add_running(&c, running);
     if (residual != NODE_NONE)
         add_residual(&c, residual);
-    if (invest != NODE_NONE || running != NODE_NONE || residual != NODE_NONE)
-        compiled_add(b, PROPERTY_PRESENT_COST, NULL, NULL, money_sum(m, c.parts.n, c.parts.at),
-                     NULL, NULL);
+    return c.once;
+}
+
+struct payments cost_once(const struct money *m, const char *option)
+{
+    return paid_once(m, compiled_of(m->b, option));
+}
+
+static node_id running_between(const struct money *m, const struct compiled *option, double from,
+                               double to)
+{
+    struct life life = life_of(m->f, option->id);
+    node_id running = node_of(m->f, option, PROPERTY_RUNNING);
+    from = fmax(fmax(life.begin, 0), from);
+    to = fmin(life_end(&life), to);
+    if (running == NODE_NONE || from >= to)
+        return NODE_NONE;
+    return graph_op2(m->f->graph, OP_MULTIPLY, running, money_annuity(m, from, to));
+}
+
+node_id cost_running(const struct money *m, const char *option, double from, double to)
+{
+    return running_between(m, compiled_of(m->b, option), from, to);
+}
+
+static void add_present(struct building *b, const struct money *m)
+{
+    struct parts parts = {0};
+    struct payments once = paid_once(m, b->unit);
+    for (size_t i = 0; i < once.n; i++)
+        *array_push(m->f->arena, &parts) = cost_paid(m, &once.at[i]);
+    node_id running = running_between(m, b->unit, 0, m->horizon);
+    if (running != NODE_NONE)
+        *array_push(m->f->arena, &parts) = running;
+    if (b->unit->n)
+        compiled_add(b, PROPERTY_PRESENT_COST, NULL, NULL, money_sum(m, parts.n, parts.at), NULL,
+                     NULL);
 }
 
 /* --- options --- */
@@ -138,7 +167,7 @@ ohmen_status cost_compile(struct figures *f, const char *option, const struct co
     compiled_begin(f, base, o, option, &b);
     add_figures(&b, o->data);
     money_begin(&m, f, &b, horizon_length(f->base->settings));
-    add_present(&b, &m, o);
+    add_present(&b, &m);
     compiled_end(&b);
     *out = b.unit;
     return OHMEN_OK;

@@ -11,6 +11,20 @@
 ohmen_status cost_compile(struct figures *f, const char *option, const struct compiled **out,
                           ohmen_error *e);
 
+/* What an option costs once: its investment and renewals at the start of a year of the horizon, and
+ * what it is worth at the end, negative, at the end of the horizon. It was compiled. */
+struct payment {
+    double year;
+    node_id amount; /* not discounted */
+};
+struct payments ARRAY_BODY(struct payment);
+struct payments cost_once(const struct money *m, const char *option);
+/* Its present value. */
+node_id cost_paid(const struct money *m, const struct payment *p);
+
+/* The present value of its running cost between two times; NODE_NONE: there is none. */
+node_id cost_running(const struct money *m, const char *option, double from, double to);
+
 /* The present value of what the options of an alternative cost; they were compiled. */
 node_id cost_present(const struct money *m, const struct alternative *alt);
 

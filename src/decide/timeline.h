@@ -22,9 +22,9 @@ struct stretch {
 };
 struct stretches ARRAY_BODY(struct stretch);
 
-/* Cuts the horizon where options of the alternative come or go, are renewed so that something is new
- * again, or have been commissioned; in order of time. OHMEN_COMPUTE where what holds together in a
- * stretch contradicts or leaves the register wrong. */
+/* Cuts the horizon where options of the alternative come or go, are renewed so that something is
+ * new again, or have been commissioned; in order of time. OHMEN_COMPUTE where what holds together
+ * in a stretch contradicts or leaves the register wrong. */
 ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double horizon,
                           struct stretches *out, ohmen_error *e);
 

@@ -85,27 +85,39 @@ static double point_difference(const struct search *s, const struct contest *p)
     return point_net(s, p->best) - point_net(s, p->other);
 }
 
+struct targets ARRAY_BODY(node_id);
+
+/* What is left of other shares must be seen, whether damage follows from it or not. */
+static void add_rests(const struct search *s, struct targets *to)
+{
+    for (figure_id i = 0; i < s->f->list.n; i++) {
+        const struct figure *g = figure_at(s->f, i);
+        if (g->property == PROPERTY_SHARE && !g->text)
+            *array_push(s->f->arena, to) = g->node;
+    }
+}
+
+static bool is_exact(const struct search *s, const struct alternative *x)
+{
+    return x->net == FIGURE_NONE || figure_method(s->f, x->net) == MEAN_EXACT;
+}
+
 static void open_prober(struct search *s)
 {
-    node_id targets[2 * MOST_PAIRS];
-    size_t n = 0;
+    struct targets targets = {0};
     for (size_t i = 0; i < s->n_pairs; i++) {
         node_id of[] = {net_node(s, s->pairs[i].best), net_node(s, s->pairs[i].other)};
         for (size_t k = 0; k < 2; k++)
             if (of[k] != NODE_NONE)
-                targets[n++] = of[k];
+                *array_push(s->f->arena, &targets) = of[k];
     }
-    s->prober = prober_new(s->f->arena, s->f->eval, n, targets);
+    add_rests(s, &targets);
+    s->prober = prober_new(s->f->arena, s->f->eval, targets.n, targets.at);
     for (size_t i = 0; i < s->n_pairs; i++) {
         struct contest *p = &s->pairs[i];
         p->difference = mean_net(s, p->best) - mean_net(s, p->other);
         p->shift = p->difference - point_difference(s, p);
-        bool exact = true;
-        for (size_t k = 0; k < 2; k++) {
-            const struct alternative *x = k ? p->other : p->best;
-            exact = exact && (x->net == FIGURE_NONE || figure_method(s->f, x->net) == MEAN_EXACT);
-        }
-        s->out->shifted = s->out->shifted || !exact;
+        s->out->shifted = s->out->shifted || !is_exact(s, p->best) || !is_exact(s, p->other);
     }
 }
 

@@ -100,6 +100,7 @@ static bool moves_with(const struct figures *f, figure_id first, figure_id other
 {
     const char *text = figure_at(f, other)->text, *said = figure_at(f, first)->text;
     return text_equal(text, said) || has_factor(f->arena, text, said) ||
+           has_factor(f->arena, said, text) ||
            is_multiple(distribution(f, first), distribution(f, other));
 }
 
@@ -178,11 +179,11 @@ static void gather(struct gathering *x, figure_id id)
     add_node(x, in, id);
 }
 
-/* Figures with fewer changes first, so that the most basic one gives its name to the input,
- * whatever was compiled before. */
+/* Figures with fewer changes first, then those that say less, so that the most basic one gives its
+ * name to the input, whatever was compiled before. */
 struct named {
     figure_id id;
-    size_t n_changes;
+    size_t n_changes, length;
     const char *name;
 };
 
@@ -191,6 +192,8 @@ static int by_changes(const void *p, const void *q)
     const struct named *a = p, *b = q;
     if (a->n_changes != b->n_changes)
         return a->n_changes < b->n_changes ? -1 : 1;
+    if (a->length != b->length)
+        return a->length < b->length ? -1 : 1;
     return text_compare(a->name, b->name);
 }
 
@@ -202,7 +205,8 @@ void turn_inputs_of(struct figures *f, const struct weighing *w, const struct pr
     for (figure_id id = 0; id < f->list.n; id++)
         if (is_input(&x, id))
             *array_push(f->arena, &all) =
-                (struct named){id, unit_of(f, id)->variant->n, figure_name(f, f->arena, id)};
+                (struct named){id, unit_of(f, id)->variant->n, strlen(figure_at(f, id)->text),
+                               figure_name(f, f->arena, id)};
     if (all.n > 1)
         qsort(all.at, all.n, sizeof *all.at, by_changes);
     for (size_t i = 0; i < all.n; i++)

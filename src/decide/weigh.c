@@ -9,6 +9,7 @@
 
 #include "decide/alternatives.h"
 #include "decide/cost.h"
+#include "decide/flow.h"
 #include "decide/worth.h"
 #include "figure/compile.h"
 #include "figure/supply.h"
@@ -204,8 +205,9 @@ static bool has_pair_left_out(struct figures *f, const struct weighing *w,
     return false;
 }
 
-/* Makes the variants, and cuts the horizon. Options that are right alone may leave the register wrong
- * together, such as two that add a row of the same clearance time: then they are no alternative. */
+/* Makes the variants, and cuts the horizon. Options that are right alone may leave the register
+ * wrong together, such as two that add a row of the same clearance time: then they are no
+ * alternative. */
 static ohmen_status find_variants(struct figures *f, struct weighing *w,
                                   struct stretches *stretches, ohmen_error *e)
 {
@@ -338,6 +340,10 @@ ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohm
     if (o && o->kind == KIND_DECISION) {
         status = weigh_compile(f, id, &w, e);
         c = status == OHMEN_OK ? w->unit : NULL;
+        const struct flow *unused;
+        const struct alternative *x = c && dot ? flow_alternative(f, w, dot + 1) : NULL;
+        if (x)
+            status = flow_compile(f, w, x, &unused, e);
     } else if (o && o->kind == KIND_OPTION) {
         status = cost_compile(f, o->id, &c, e);
     } else {

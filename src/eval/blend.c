@@ -456,9 +456,10 @@ const double *blend_at(struct blend *b, const double *x)
     return b->results;
 }
 
+/* Own inputs first: what depends on shared ones too, a course among it, is a step of these. */
 void blend_end(struct blend *b)
 {
-    knot_walk(b->v, &b->steps, NULL);
     for (size_t i = 0; i < b->n; i++)
         knot_walk(b->v, &b->variables[i].steps, NULL);
+    knot_walk(b->v, &b->steps, NULL);
 }

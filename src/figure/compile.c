@@ -242,7 +242,8 @@ ohmen_status compile_references_at(struct figures *f, const struct variant *v,
         const struct reference *r = &o->refs.at[i];
         const struct object *to = model_find(v->model, r->id);
         if (r->trace || r->later || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
-            to->kind == KIND_COMMON_CAUSE || (path && !text_equal(path, r->path)))
+            to->kind == KIND_GROUP || to->kind == KIND_COMMON_CAUSE ||
+            (path && !text_equal(path, r->path)))
             continue;
         ohmen_status status = compile_one_reference(f, v, o, r, to, e);
         if (status != OHMEN_OK)
@@ -281,6 +282,7 @@ static ohmen_status compile_object(struct figures *f, const struct variant *v,
     case KIND_HAZARD: return compile_hazard(f, v, o, out, e);
     case KIND_COMMON_CAUSE: return compile_group(f, v, o, out, e);
     case KIND_STATE: return compile_state(f, v, o, out, e);
+    case KIND_SITE: return compile_site(f, v, o, out, e);
     default:
         return error_set(e, OHMEN_COMPUTE, "\"%s\" is %s, which has no figures in this version",
                          o->id, kinds_words(f->arena, KIND_BIT(o->kind)));

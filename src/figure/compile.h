@@ -144,6 +144,9 @@ ohmen_status compile_repairable(struct figures *f, const struct variant *v, cons
 #define PART_CONSEQUENCES "consequences"
 #define PART_SUPPLY "supply"
 #define PART_TOTAL "total"
+/* A site: what it supplies. Its figures are those that it states. */
+ohmen_status compile_site(struct figures *f, const struct variant *v, const struct object *o,
+                          struct compiled **out, ohmen_error *e);
 ohmen_status compile_consequences(struct figures *f, const struct variant *v,
                                   const struct object *o, ohmen_error *e);
 

@@ -11,7 +11,8 @@
  *     momentary-...        the same over the other rows
  *     customer-time        1 a x sum of f x customers x time, over the sustained ones
  *     energy-not-supplied  1 a x sum of f x load x time, over all rows
- *     individual-risk.G    sum of f x present x death: of a given person of the group, per year
+ *     individual-risk.G    sum of f x present x death: of a given person of the group, per year;
+ *                          individual-risk.G.OUTCOME: what one outcome adds to it
  *     injury-risk.G        sum of f x present x injury
  *     fatalities.G         individual risk x persons: expected deaths per year
  * Interruptions are those of IEEE 1366-2012, clauses 3 and 4. A row that lasts an uncertain time
@@ -30,7 +31,7 @@
 
 struct consequence {
     enum property property;
-    const char *of;          /* perspective, category or group; NULL */
+    const char *of;          /* perspective, category, group or "GROUP.OUTCOME"; NULL */
     figure_id mean;          /* over the horizon */
     const figure_id *yearly; /* as hazard_exports.yearly and by its of_year; NULL: not kept */
 };
@@ -39,6 +40,10 @@ struct harm_to {
     const char *group;
     figure_id death, injury; /* of a given person, per year */
     figure_id fatalities;    /* deaths in the group, per year */
+    /* Of a group over all hazards: of death, by year of the horizon, yearly[y]; of_year[y] is the
+     * first year that is like y. NULL: yearly[0] in all. Of one hazard: NULL both. */
+    const figure_id *yearly;
+    const uint32_t *of_year;
 };
 struct consequence_exports {
     size_t n;

@@ -66,6 +66,12 @@
       "damaging outcomes")                                                                         \
     X(DAMAGING, "damaging", "how often a hazard ends in an outcome with damage")                   \
     X(RISK, "risk", "frequency times damage, of an outcome or a hazard")                           \
+    X(CUSTOMERS, "customers", "customers supplied from a site")                                    \
+    X(LOAD, "load", "load supplied from a site, or that an outcome interrupts")                    \
+    X(LASTS, "lasts", "how long an interruption of an outcome lasts")                              \
+    X(PRESENT, "present", "probability that a given person of a group is there")                   \
+    X(DIES, "death", "probability of death of a person who is there")                              \
+    X(INJURED, "injury", "probability of injury of a person who is there")                         \
     X(INTERRUPTIONS, "interruptions", "customers interrupted in a year, for long (IEEE 1366)")     \
     X(MOMENTARY, "momentary-interruptions", "customers interrupted in a year, for a short time")   \
     X(CUSTOMER_TIME, "customer-time", "time without supply in a year, summed over customers")      \
@@ -91,6 +97,11 @@
     X(NET, "net-present-value", "what an alternative is worth against doing nothing")              \
     X(BENEFIT, "benefit", "present value of the damage that an alternative avoids")                \
     X(AVOIDS, "avoids", "risk that an alternative avoids in a mean year, once in service")         \
+    X(AVOIDED, "avoided", "damage that an alternative avoids in one year, not discounted")         \
+    X(INVESTED, "invested", "what is invested in an alternative in one year, not discounted")      \
+    X(CUMULATED, "cumulated",                                                                      \
+      "present value of all that an alternative avoids less all that it "                          \
+      "costs, until the end of a year")                                                            \
     X(AVOIDS_TIME, "avoids-customer-time",                                                         \
       "customer time without supply that an alternative avoids in a mean year")                    \
     X(AVOIDS_FATALITIES, "avoids-fatalities", "deaths that an alternative avoids in a mean year")  \
@@ -143,7 +154,7 @@ struct span {
     bool yearly;             /* windows are years of the horizon */
     uint32_t years;          /* of the horizon */
     const uint32_t *of_year; /* yearly: the window that holds in each */
-    double from;             /* yearly: what there was not before; its year is a window from there */
+    double from;             /* yearly: the beginning; its year is a window from there */
 };
 
 /* What an element shows to common causes and to the report. */

@@ -268,7 +268,8 @@ bool property_is_probability(enum property p)
     return p == PROPERTY_FAILS || p == PROPERTY_SHARE || p == PROPERTY_ON_DEMAND ||
            p == PROPERTY_IN_REPAIR || p == PROPERTY_IN_TEST || p == PROPERTY_OUT ||
            p == PROPERTY_FINDS || p == PROPERTY_LEFT || p == PROPERTY_STANDING ||
-           p == PROPERTY_COURSE || p == PROPERTY_BETA || p == PROPERTY_UNWANTED_PER_EVENT ||
+           p == PROPERTY_COURSE || p == PROPERTY_BETA || p == PROPERTY_PRESENT ||
+           p == PROPERTY_DIES || p == PROPERTY_INJURED || p == PROPERTY_UNWANTED_PER_EVENT ||
            p == PROPERTY_ASSERTS || p == PROPERTY_AVAILABILITY || p == PROPERTY_UNAVAILABILITY;
 }
 

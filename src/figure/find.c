@@ -3,8 +3,8 @@
 #include <string.h>
 
 #include "figure/importance.h"
+#include "figure/over_hazards.h"
 #include "figure/states.h"
-#include "figure/supply.h"
 #include "figure/upkeep.h"
 
 /* "ID.rest@A+S=x+[name]" cut into its parts. */
@@ -166,6 +166,10 @@ static const struct part {
     {                                                                                              \
         p, KIND_BIT(KIND_HAZARD), PART_CONSEQUENCES, compile_consequences                          \
     }
+#define AT_SITE(p)                                                                                 \
+    {                                                                                              \
+        p, KIND_BIT(KIND_SITE), PART_SITE, compile_site_sums                                       \
+    }
 #define STATED (KIND_BIT(KIND_ELEMENT) | KIND_BIT(KIND_TYPE))
     ASSERTED(PROPERTY_UNWANTED, KIND_BIT(KIND_SCHEME) | STATED),
     ASSERTED(PROPERTY_UNWANTED_PER_EVENT, KIND_BIT(KIND_SCHEME) | STATED),
@@ -176,6 +180,11 @@ static const struct part {
     REPAIRED(PROPERTY_OUTAGE_TIME),
     HARM(PROPERTY_DAMAGE), /* items that the chosen perspective does not count */
     HARM(PROPERTY_CLEARANCE),
+    HARM(PROPERTY_LASTS),
+    HARM(PROPERTY_LOAD),
+    HARM(PROPERTY_PRESENT),
+    HARM(PROPERTY_DIES),
+    HARM(PROPERTY_INJURED),
     HARM(PROPERTY_BORNE),
     HARM(PROPERTY_CATEGORY),
     HARM(PROPERTY_INTERRUPTIONS),
@@ -185,6 +194,17 @@ static const struct part {
     HARM(PROPERTY_DEATH),
     HARM(PROPERTY_INJURY),
     HARM(PROPERTY_FATALITIES),
+    AT_SITE(PROPERTY_RISK),
+    AT_SITE(PROPERTY_BORNE),
+    AT_SITE(PROPERTY_CATEGORY),
+    AT_SITE(PROPERTY_INTERRUPTIONS),
+    AT_SITE(PROPERTY_MOMENTARY),
+    AT_SITE(PROPERTY_CUSTOMER_TIME),
+    AT_SITE(PROPERTY_NOT_SUPPLIED),
+    AT_SITE(PROPERTY_SAIFI),
+    AT_SITE(PROPERTY_SAIDI),
+    AT_SITE(PROPERTY_MAIFI),
+#undef AT_SITE
 #undef HARM
 #undef REPAIRED
 #undef ASSERTED
@@ -220,44 +240,46 @@ static ohmen_status to_part(struct figures *f, const struct variant *v, const ch
 
 /* --- what is made of all hazards --- */
 
-static ohmen_status all_hazards(struct figures *f, const struct compiled ***out, ohmen_error *e)
+/* The parts of the register's figures that are sums over hazards, by property. */
+static const char *register_part(const char *rest)
 {
-    const struct objects *hazards = &f->base->of[KIND_HAZARD];
-    const struct variant *base;
-    ohmen_status status = figures_variant(f, 0, NULL, &base, e);
-    *out = NEW_ARRAY(f->arena, hazards->n, const struct compiled *);
-    for (size_t i = 0; status == OHMEN_OK && i < hazards->n; i++)
-        status = figures_compile(f, base, hazards->at[i]->id, &(*out)[i], e);
-    return status;
+    static const struct {
+        enum property property;
+        const char *part;
+    } sums[] = {{PROPERTY_RISK, PART_TOTAL},           {PROPERTY_BORNE, PART_ACCOUNTS},
+                {PROPERTY_CATEGORY, PART_ACCOUNTS},    {PROPERTY_SAIFI, PART_SUPPLY},
+                {PROPERTY_SAIDI, PART_SUPPLY},         {PROPERTY_CAIDI, PART_SUPPLY},
+                {PROPERTY_ASAI, PART_SUPPLY},          {PROPERTY_MAIFI, PART_SUPPLY},
+                {PROPERTY_INTERRUPTIONS, PART_SUPPLY}, {PROPERTY_MOMENTARY, PART_SUPPLY},
+                {PROPERTY_CUSTOMER_TIME, PART_SUPPLY}, {PROPERTY_NOT_SUPPLIED, PART_SUPPLY}};
+    for (size_t i = 0; i < sizeof sums / sizeof *sums; i++)
+        if (begins_with(rest, properties[sums[i].property].word))
+            return sums[i].part;
+    return NULL;
 }
 
-/* The register's settings, its risk, or its supply: by the property that is asked for. */
+/* The register's settings, or the part of it that has the figure. */
 static ohmen_status register_unit(struct figures *f, const char *rest, const struct compiled **out,
                                   ohmen_error *e)
 {
-    static const enum property of_supply[] = {
-        PROPERTY_SAIFI,     PROPERTY_SAIDI,         PROPERTY_CAIDI,
-        PROPERTY_ASAI,      PROPERTY_MAIFI,         PROPERTY_INTERRUPTIONS,
-        PROPERTY_MOMENTARY, PROPERTY_CUSTOMER_TIME, PROPERTY_NOT_SUPPLIED};
-    bool supply = false, risk = begins_with(rest, properties[PROPERTY_RISK].word);
-    const struct compiled **hazards;
-    for (size_t i = 0; i < sizeof of_supply / sizeof *of_supply; i++)
-        supply = supply || begins_with(rest, properties[of_supply[i]].word);
+    const char *part = register_part(rest);
+    struct over all;
+    struct supply supply;
+    struct accounts accounts;
     *out = figures_settings(f);
-    if (!supply && !risk)
+    if (!part)
         return OHMEN_OK;
-    ohmen_status status = all_hazards(f, &hazards, e);
-    struct supply unused;
-    size_t n = f->base->of[KIND_HAZARD].n;
-    if (status == OHMEN_OK && supply)
-        status = figures_supply(f, n, hazards, &unused, e);
-    if (status != OHMEN_OK)
-        return status;
-    if (risk)
-        figures_total(f, n, hazards);
+    ohmen_status status = over_all_hazards(f, &all, e);
+    if (status == OHMEN_OK && text_equal(part, PART_TOTAL))
+        figures_total(f, all.n, all.hazards);
+    if (status == OHMEN_OK && text_equal(part, PART_SUPPLY))
+        status = figures_supply(f, all.n, all.hazards, &supply, e);
+    if (status == OHMEN_OK && text_equal(part, PART_ACCOUNTS))
+        status = figures_accounts(f, all.n, all.hazards, &accounts, e);
     struct building under = {.figures = f, .variant = (*out)->variant};
-    *out = compiled_part(&under, REGISTER_ID, supply ? PART_SUPPLY : PART_TOTAL);
-    return OHMEN_OK;
+    if (status == OHMEN_OK)
+        *out = compiled_part(&under, REGISTER_ID, part);
+    return status;
 }
 
 static bool is_group(const struct figures *f, const char *id)
@@ -268,14 +290,36 @@ static bool is_group(const struct figures *f, const char *id)
 static ohmen_status group_unit(struct figures *f, const char *id, const struct compiled **out,
                                ohmen_error *e)
 {
-    const struct compiled **hazards;
+    struct over all;
     struct harm_to *unused;
-    ohmen_status status = all_hazards(f, &hazards, e);
+    ohmen_status status = over_all_hazards(f, &all, e);
     if (status == OHMEN_OK)
-        status = figures_people(f, f->base->of[KIND_HAZARD].n, hazards, &unused, e);
+        status = figures_people(f, all.n, all.hazards, &unused, e);
     struct building under = {.figures = f, .variant = figures_settings(f)->variant};
     *out = status == OHMEN_OK ? compiled_of(&under, id) : NULL;
     return status;
+}
+
+/* Is the figure a sum over the hazards of the register as it is? */
+static bool is_sum(const struct figures *f, const struct name_parts *p)
+{
+    const struct object *o = model_find(f->base, p->id);
+    if (!o)
+        return false;
+    return (o->kind == KIND_REGISTER && register_part(p->rest)) || o->kind == KIND_GROUP ||
+           (o->kind == KIND_SITE && part_of(o, p->rest));
+}
+
+static ohmen_status refuse_variant(const struct figures *f, const struct name_parts *p,
+                                   ohmen_error *e)
+{
+    bool varied = p->options.n || p->states.n || p->made_up.n;
+    if (!varied || !is_sum(f, p))
+        return OHMEN_OK;
+    return error_set(e, OHMEN_UNKNOWN,
+                     "\"%s.%s\" is a sum over the hazards of the register as it is: it takes "
+                     "neither options nor states",
+                     p->id, p->rest);
 }
 
 /* What an element does beside its common causes, and figures of its upkeep where it is tested:
@@ -298,6 +342,8 @@ ohmen_status figures_find(struct figures *f, const char *name, figure_id *out, o
     const struct compiled *u;
     cut_name(f->arena, name, &p);
     ohmen_status status = named_variant(f, &p, &v, e);
+    if (status == OHMEN_OK)
+        status = refuse_variant(f, &p, e);
     if (status != OHMEN_OK)
         return status;
     if (text_equal(p.id, REGISTER_ID))

@@ -6,9 +6,9 @@
  *   nothing dated    one window, the common cycle of all tests, all of them tested together at the
  *                    start of the horizon: the long-run average
  *   something dated  (a date of a test, or a part that no test ever finds) each year of the horizon
- *                    is a window; years that repeat an earlier one share its window. Where something
- *                    comes into service within the horizon, with an option, the first window begins
- *                    then; years before have no meaning, and share it
+ *                    is a window; years that repeat an earlier one share its window. Where
+ *                    something comes into service within the horizon, with an option, the first
+ *                    window begins then; years before have no meaning, and share it
  *   steady           (the register or figures.whole_cycles asks for it) one window of a common
  *                    cycle behind all first tests, dates kept as phases
  * Where no common cycle within SPAN_CYCLE years exists, years of the horizon are the windows. */

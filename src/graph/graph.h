@@ -149,8 +149,8 @@ const struct years *graph_years_of(const struct graph *g, node_id n);
  *
  * args: standing, rate, ending, left, unreset; standing and left are numbers, the three rates
  * have one dimension, whose inverse is that of the times in `struct course`.
- * The value of the node itself is p(0); what begins later is there as it is at its beginning. from <= first; every > 0
- * where first is finite. */
+ * The value of the node itself is p(0); what begins later is as it is at its beginning.
+ * from <= first; every > 0 where first is finite. */
 struct course {
     double from, first, every; /* first: INFINITY for none */
     double born;

@@ -8,10 +8,10 @@
 
 #include "doc/patch.h"
 
-/* What a change may touch. */
+/* What a change may touch: all that computes. */
 static bool is_changeable(enum kind k)
 {
-    return k == KIND_SITE || k == KIND_GROUP || (k < KIND_COUNT && kinds[k].computes);
+    return k < KIND_COUNT && kinds[k].computes;
 }
 
 static void unknown_section(struct binding *b, const struct pair *p)

@@ -37,6 +37,11 @@ void check_quantities(struct checking *c, const struct object *o);
 /* Exactly one last row, times, shares, outcomes. */
 void check_hazard(struct checking *c, const struct object *o);
 
+/* Interruptions with neither customers nor load have a site that states them. */
+void check_supply(struct checking *c, const struct object *o);
+/* The same of the hazards that a change left alone while it changed sites; told at `at`. */
+void check_supply_left(struct checking *c, struct place at);
+
 /* Settings, rates, options, states, decisions, plans. */
 void check_settings(struct checking *c, const struct object *o);
 void check_rate(struct checking *c, const struct object *o);

@@ -308,4 +308,5 @@ void check_hazard(struct checking *c, const struct object *o)
     check_equal_times(&h, rows_node);
     check_last_time(&h, rows_node);
     check_categories(&h);
+    check_supply(c, o);
 }

@@ -57,8 +57,11 @@ struct varying {
     const char *source, *note;
 };
 
+/* What criteria in money apply to: indices into scope_words. */
+enum scope { SCOPE_HAZARD, SCOPE_SITE, SCOPE_REGISTER };
+
 struct money_criteria {
-    int scope; /* index into scope_words: hazard, site, register */
+    int scope; /* enum scope */
     struct quantity *acceptable_below, *intolerable_above;
 };
 struct people_criteria {

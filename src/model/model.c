@@ -10,6 +10,7 @@
 
 #include "model/bind.h"
 #include "model/check.h"
+#include "model/supplied.h"
 #include "model/variant.h"
 
 struct model *model_new(struct arena *a)
@@ -72,7 +73,7 @@ struct object *model_bind(struct binding *b, enum kind kind, const char *id,
         return NULL;
     struct object *o = NEW(b->arena, struct object);
     *o = (struct object){.kind = kind, .id = id, .data = data, .node = canonical};
-    walk_references(b->arena, kinds[kind].table, canonical, data, &o->refs);
+    kind_references(b->arena, kind, canonical, data, &o->refs);
     return o;
 }
 

@@ -106,7 +106,8 @@ const struct node *model_combination(const struct model *base, const char *optio
 struct model_change model_early_change(struct arena *a, const struct model *base,
                                        const char *option);
 
-/* Do two options contradict, also when what settles them is taken into account? The path ("hazards/H-1/response/x/in"), or NULL. */
+/* Do two options contradict, also when what settles them is taken into account? The path
+ * ("hazards/H-1/response/x/in"), or NULL. */
 const char *model_contradiction(struct arena *a, const struct model *base, const char *option_p,
                                 const char *option_q);
 

@@ -488,18 +488,12 @@ static struct node *structure_schema(const struct schema *s)
     return put(s, def, "anyOf", forms);
 }
 
-/* What a change may touch: src/model/bind_change.c refuses the rest. */
-static bool is_changeable(int k)
-{
-    return kinds[k].computes || k == KIND_SITE || k == KIND_GROUP;
-}
-
 static struct node *change_schema(struct schema *s)
 {
     struct node *sections = new_map(s);
     s->part = true;
     for (int k = 0; k < KIND_COUNT; k++)
-        if (is_changeable(k)) {
+        if (kinds[k].computes) { /* src/model/bind_change.c refuses the rest */
             struct node *object = either(s, ref(s, "", "removal"), table_schema(s, kinds[k].table));
             put(s, sections, kinds[k].section, map_of(s, ref(s, "", "name"), object));
         }

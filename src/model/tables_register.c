@@ -25,10 +25,10 @@ static const struct table table_money_criteria = TABLE(
 static const struct field people_criteria_fields[] = {
     F(struct people_criteria, acceptable_below, "acceptable-below", QUANTITY,
       "Individual risk that is broadly acceptable", .dim = FREQUENCY,
-      .flags = CERTAIN | POSITIVE | CONSTANT | LATER),
+      .flags = CERTAIN | POSITIVE | CONSTANT),
     F(struct people_criteria, intolerable_above, "intolerable-above", QUANTITY,
       "Individual risk that is intolerable", .dim = FREQUENCY,
-      .flags = CERTAIN | POSITIVE | CONSTANT | LATER),
+      .flags = CERTAIN | POSITIVE | CONSTANT),
     F(struct people_criteria, disproportion, "disproportion", QUANTITY,
       "How many times its benefit a measure may cost before it is grossly disproportionate",
       .dim = NUMBER, .flags = CERTAIN | POSITIVE | CONSTANT),
@@ -102,12 +102,12 @@ const struct table table_source =
 
 static const struct field site_fields[] = {
     F(struct site, name, "name", TEXT, "Name of the place", .flags = REQUIRED),
-    F(struct site, in, "in", REF, "The site that this one is part of", .kinds = KIND_BIT(KIND_SITE),
-      .flags = TRACE),
-    F(struct site, customers, "customers", COUNT, "Customers supplied from here", .low = 0,
-      .high = 1000000000000, .flags = LATER),
-    F(struct site, load, "load", QUANTITY, "Load supplied from here", .dim = POWER,
-      .flags = NOT_NEGATIVE | LATER),
+    F(struct site, in, "in", REF, "The site that this one is part of",
+      .kinds = KIND_BIT(KIND_SITE)),
+    F(struct site, customers, "customers", COUNT,
+      "Customers supplied from here, at the sites in it too", .low = 0, .high = 1000000000000),
+    F(struct site, load, "load", QUANTITY, "Load supplied from here, at the sites in it too",
+      .dim = POWER, .flags = NOT_NEGATIVE),
     F(struct site, note, "note", TEXT, "Anything else"),
 };
 const struct table table_site =

@@ -198,9 +198,24 @@ static void check_same_dim(struct applying *ap, struct checking *c, const struct
                  dim_words(c->arena, &c->model->units, after));
 }
 
+/* A hazard may rest on what its site supplies. */
+static void check_sites(struct applying *ap, struct checking *c)
+{
+    for (size_t i = 0; i < ap->variant->by_id.n; i++) {
+        const char *id = ap->variant->by_id.at[i].key;
+        const struct kind_info *k = strmap_get(&ap->kind_of, id);
+        const struct pair *p = strmap_get(&ap->places, id);
+        if (k != &kinds[KIND_SITE])
+            continue;
+        check_supply_left(c, p->place);
+        return;
+    }
+}
+
 static void check_results(struct applying *ap)
 {
     struct checking c = {.arena = ap->arena, .model = ap->variant, .diags = ap->diags};
+    check_sites(ap, &c);
     for (size_t i = 0; i < ap->variant->by_id.n; i++) {
         const struct object *o = ap->variant->by_id.at[i].value;
         if (!o) {

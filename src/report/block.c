@@ -59,6 +59,22 @@ struct block *report_table(struct report *r, const char *key, const char *title)
     return add_block(r, BLOCK_TABLE, key, title);
 }
 
+struct block *report_signatures(struct report *r, const char *key, const char *title,
+                                const char *const *roles, size_t n)
+{
+    struct block *b = add_block(r, BLOCK_SIGNATURES, key, title);
+    block_column(r, b, "role", "", "", STYLE_PLAIN);
+    block_column(r, b, "name", "Name and signature", "", STYLE_PLAIN);
+    block_column(r, b, "date", "Date", "", STYLE_PLAIN);
+    for (size_t i = 0; i < n; i++) {
+        struct row *row = block_row(r, b);
+        row_text(r, row, roles[i]);
+        row_empty(r, row);
+        row_empty(r, row);
+    }
+    return b;
+}
+
 struct block *report_grid(struct report *r, const char *key, const char *title,
                           const char *currency)
 {
@@ -168,6 +184,7 @@ struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *l
     m->frequency = frequency;
     m->damage = damage;
     m->arrow_from = -1;
+    m->part_of = -1;
     return m;
 }
 

@@ -15,7 +15,15 @@
 #include "base/error.h"
 #include "base/text.h"
 
-enum block_type { BLOCK_HEADING, BLOCK_NOTE, BLOCK_PAIRS, BLOCK_TABLE, BLOCK_GRID, BLOCK_CURVE };
+enum block_type {
+    BLOCK_HEADING,
+    BLOCK_NOTE,
+    BLOCK_PAIRS,
+    BLOCK_TABLE,
+    BLOCK_GRID,
+    BLOCK_CURVE,
+    BLOCK_SIGNATURES
+};
 
 enum cell_type {
     CELL_EMPTY,
@@ -26,12 +34,19 @@ enum cell_type {
     CELL_YES     /* number 1 or 0, printed as yes or no */
 };
 
-/* How a column of numbers is printed. */
+/* How a column of numbers is printed: three significant digits, always. Zeros at the end of a
+ * fraction are printed where the number was rounded, and left out where it is exact (to twelve
+ * digits): 1.40 and 12.0 were 1.398 and 12.02, 1.4 and 12 are just that. Whole numbers stay as
+ * they are: 12300. */
 enum number_style {
-    STYLE_PLAIN,       /* three significant digits; below 0.01 and from 1e5 with an exponent:
-                          0.0123, 1.23e-3, 12300, 1.23e5. Zeros at the end of a fraction
-                          are not printed */
-    STYLE_MONEY,       /* prefix k, M or G chosen once for the column: "kEUR" in the head */
+    STYLE_PLAIN,       /* below 0.01 and from 1e5 with an exponent: 0.0123, 1.23e-3, 12300,
+                          1.23e5 */
+    STYLE_MONEY,       /* prefix k, M or G chosen once for the column, "kEUR" in the head: that of
+                          the largest amount, 1 to 999 of it; the next lower one where the largest
+                          then has four digits before its point and the smallest would stand below
+                          0.1 otherwise: 1570 and 29.9, not 1.57 and 0.0299. In it 12.4, -34.7
+                          and 0.00895; an exponent below 0.001 alone. Without a unit no prefix:
+                          8950000 */
     STYLE_FREQUENCY,   /* per year; below 0.1 with an exponent, as 2.94e-3, and, in a cell of
                           its own when there is room, as "1 in 340 a" */
     STYLE_PROBABILITY, /* as PLAIN: 0.0123, 4.1e-5, 1; more digits where a number below 1
@@ -39,6 +54,9 @@ enum number_style {
     STYLE_PERCENT,     /* the value 0.123 printed as 12.3 under the unit %; 99.99 as it is. JSON
                           and CSV have the pure number 0.123, without a unit */
     STYLE_RATIO,       /* 1.23 */
+    STYLE_GROUPED,     /* as PLAIN, but without an exponent from 1e5 on, and in groups of three
+                          digits: 12 300, 1 230 000; from 0.99 to 1 with three digits of what is
+                          missing to 1, and six decimals: 0.999795 */
     STYLE_YEAR         /* a year and its part, with at most two decimals: 2027, 2031.25 */
 };
 
@@ -65,13 +83,16 @@ struct column {
 
 struct row ARRAY_BODY(struct cell);
 
-/* A mark of the grid: a point with a label, and perhaps an arrow to another one. */
+/* A mark of the grid: a point with a label, and perhaps an arrow to another one. A part of
+ * another mark is drawn hollow, and only where it finds room for itself and its label beside
+ * the marks that are no parts; the key always has it. It has no arrow. */
 struct grid_mark {
     const char *label;   /* short, printed beside the mark */
     const char *name;    /* long, printed in the key below */
     double frequency;    /* per year, > 0 (0: listed in the key as never) */
     double damage;       /* money, > 0 (0: listed in the key as without damage) */
     int arrow_from;      /* index of the mark that it starts from, -1: none */
+    int part_of;         /* index of a mark before it that it is a part of, -1: none */
     const char *frequency_figure, *damage_figure;
 };
 
@@ -83,6 +104,8 @@ struct grid_line {
 
 struct grid {
     const char *currency;
+    /* What a mark is, and what a part of one is, in words for the key; NULL: just that. */
+    const char *wholes, *parts;
     ARRAY(struct grid_mark) marks;
     ARRAY(struct grid_line) lines;
 };
@@ -130,7 +153,9 @@ struct block {
     int level;           /* headings: 1, 2, 3 */
     const char *text;    /* BLOCK_NOTE: a paragraph, filled to the width; lines that begin with
                             two blanks are kept as they are */
-    ARRAY(struct column) columns; /* BLOCK_TABLE; BLOCK_PAIRS has two: name, value */
+    ARRAY(struct column)
+    columns; /* BLOCK_TABLE; BLOCK_PAIRS has two: name, value;
+                                     BLOCK_SIGNATURES three: role, name, date */
     ARRAY(struct row) rows;
     bool entries;        /* BLOCK_TABLE: in text each row is an entry: a line of the columns that
                             may never be dropped, and below it, indented, the others from keep 4
@@ -156,6 +181,11 @@ struct block *report_grid(struct report *r, const char *key, const char *title,
 /* Both axes are plain and linear, without key, head and unit, until they are set. */
 struct block *report_curve(struct report *r, const char *key, const char *title);
 
+/* Lines to be signed on paper: for each of the n roles ("Checked") one for a name and one for a
+ * date. JSON and CSV have a row for each, its name and date empty. */
+struct block *report_signatures(struct report *r, const char *key, const char *title,
+                                const char *const *roles, size_t n);
+
 /* Adds a column to a table; returns it, for `right` and `keep`. Pointers into a
  * block are valid until the next addition to the same array. */
 struct column *block_column(struct report *r, struct block *b, const char *key, const char *head,
@@ -173,7 +203,8 @@ struct row *block_pair(struct report *r, struct block *b, const char *name);
 struct cell *pair_number(struct report *r, struct row *row, double number, const char *unit,
                          enum number_style style, const char *figure);
 
-/* A mark (without an arrow and figures: set them in the result) and a line of a grid. */
+/* A mark (a whole one, without an arrow and figures: set them in the result) and a line of a
+ * grid. */
 struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *label,
                                 const char *name, double frequency, double damage);
 struct grid_line *grid_add_line(struct report *r, struct block *b, const char *name, double risk,

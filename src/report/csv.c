@@ -92,14 +92,21 @@ static void write_row(struct csv_out *w, const struct block *b, const struct row
 
 /* --- grids --- */
 
+static const char *label_at(struct csv_out *w, const struct grid *g, int i)
+{
+    return i < 0 ? "" : clean_text(w->arena, g->marks.at[i].label, false);
+}
+
 static void write_mark(struct csv_out *w, const struct grid *g, const struct grid_mark *m)
 {
     const struct cell frequency = {.type = CELL_NUMBER, .number = m->frequency};
     const struct cell damage = {.type = CELL_NUMBER, .number = m->damage};
-    const char *values[] = {
-        clean_text(w->arena, m->label, false), clean_text(w->arena, m->name, false),
-        cell_value(w, &frequency), cell_value(w, &damage),
-        m->arrow_from < 0 ? "" : clean_text(w->arena, g->marks.at[m->arrow_from].label, false)};
+    const char *values[] = {clean_text(w->arena, m->label, false),
+                            clean_text(w->arena, m->name, false),
+                            cell_value(w, &frequency),
+                            cell_value(w, &damage),
+                            label_at(w, g, m->arrow_from),
+                            label_at(w, g, m->part_of)};
     for (size_t j = 0; j < sizeof values / sizeof *values; j++) {
         text_add(w->out, j ? "," : "");
         csv_cell(w, values[j]);
@@ -107,12 +114,13 @@ static void write_mark(struct csv_out *w, const struct grid *g, const struct gri
     text_add(w->out, "\r\n");
 }
 
-/* One row a mark; "from" is the mark at the other end of its arrow. */
+/* One row a mark; "from" is the mark at the other end of its arrow, "part-of" the one that it
+ * is a part of. */
 static void write_grid(struct csv_out *w, const struct grid *g)
 {
     text_add(w->out, "mark,name,frequency-1/a,");
     csv_cell(w, arena_printf(w->arena, "damage-%s", clean_text(w->arena, g->currency, false)));
-    text_add(w->out, ",from\r\n");
+    text_add(w->out, ",from,part-of\r\n");
     for (size_t i = 0; i < g->marks.n; i++)
         write_mark(w, g, &g->marks.at[i]);
 }
@@ -166,6 +174,7 @@ static bool has_points(const struct curve *c)
 static bool is_table(const struct block *b)
 {
     switch (b->type) {
+    case BLOCK_SIGNATURES: return b->rows.n > 0;
     case BLOCK_TABLE: return b->columns.n > 0;
     case BLOCK_GRID: return b->grid->marks.n > 0;
     case BLOCK_CURVE: return has_points(b->curve);

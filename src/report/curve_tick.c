@@ -34,7 +34,7 @@ static struct form form_for(const struct curve_axis *axis, double step, double l
 {
     int small = number_exponent(step), large = number_exponent(largest);
     struct form f = {.shift = shift_for(axis, large, small), .digits = large - small + 3};
-    int low = axis->style == STYLE_FREQUENCY ? -1 : -2;
+    int low = axis->style == STYLE_FREQUENCY ? -1 : axis->style == STYLE_MONEY ? -3 : -2;
     int high = axis->style == STYLE_MONEY || axis->style == STYLE_YEAR ? 9 : 5;
     if (small - f.shift < low || large - f.shift >= high)
         f.exponent = small - f.shift;
@@ -66,9 +66,8 @@ static void label_log(struct curve_scale *s, struct arena *a)
         return;
     s->shift = shift_for(s->axis, number_exponent(s->ticks.at[s->ticks.n - 1].value),
                          number_exponent(s->ticks.at[0].value));
-    enum number_style style = s->shift > 0 ? STYLE_PLAIN : s->axis->style;
     for (size_t i = 0; i < s->ticks.n; i++) {
-        number_scaled(buf, s->ticks.at[i].value, style, s->shift);
+        number_scaled(buf, s->ticks.at[i].value, s->axis->style, s->shift);
         s->ticks.at[i].label = arena_str(a, buf);
     }
 }

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Drawing on the plane: lines of equal risk, the criteria's lines, marks. The dots of
+/* Drawing on the plane: lines of equal risk, the criteria's lines, whole marks. The dots of
  * the decades are one a row, the criteria's lines two or more: they stand out without
  * colour. Owns nothing. */
 #include <math.h>
@@ -60,8 +60,17 @@ void grid_draw_lines(struct grid_plane *g)
         draw_line(g, i);
 }
 
-const char *grid_shared_glyph(const struct page *p)
+const char *grid_lone_glyph(const struct page *p, bool part)
 {
+    if (part)
+        return p->ascii ? "o" : "○";
+    return p->ascii ? "*" : "●";
+}
+
+const char *grid_shared_glyph(const struct page *p, bool part)
+{
+    if (part)
+        return p->ascii ? "O" : "◇";
     return p->ascii ? "@" : "◆";
 }
 
@@ -69,9 +78,10 @@ void grid_draw_marks(struct grid_plane *g)
 {
     for (size_t i = 0; i < g->grid->marks.n; i++) {
         const struct grid_spot *s = &g->spots[i];
-        const char *alone = g->page->ascii ? "*" : "●";
-        if (s->placed)
-            grid_put(g, s->x, s->y, s->company > 1 ? grid_shared_glyph(g->page) : alone,
+        if (s->placed && !grid_is_part(g->grid, i))
+            grid_put(g, s->x, s->y,
+                     s->company > 1 ? grid_shared_glyph(g->page, false)
+                                    : grid_lone_glyph(g->page, false),
                      LAYER_MARK);
     }
 }

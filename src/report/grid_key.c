@@ -36,17 +36,64 @@ const char *grid_key_line(const struct grid_plane *g, size_t i)
     return arena_printf(g->page->arena, "%s (outside the picture)", words);
 }
 
+const char *grid_key_wholes(const struct grid_plane *g)
+{
+    const char *words = page_clean(g->page, g->grid->wholes);
+    return *words ? words : "a mark";
+}
+
+const char *grid_key_parts(const struct grid_plane *g)
+{
+    const char *words = page_clean(g->page, g->grid->parts);
+    return *words ? words : "a part of another mark";
+}
+
+bool grid_key_has_parts(const struct grid_plane *g, bool shared)
+{
+    for (size_t i = 0; i < g->grid->marks.n; i++) {
+        const struct grid_spot *s = &g->spots[i];
+        if (grid_is_part(g->grid, i) && s->labelled && (s->company > 1) == shared)
+            return true;
+    }
+    return false;
+}
+
+/* The signs of marks are told where there are two sorts of them. */
+static size_t add_mark_signs(struct pair *pairs, const struct grid_plane *g)
+{
+    const struct page *p = g->page;
+    bool lone = grid_key_has_parts(g, false), shared = grid_key_has_parts(g, true);
+    if (!lone && !shared)
+        return 0;
+    pairs[0] = (struct pair){grid_lone_glyph(p, false), grid_key_wholes(g), ""};
+    const char *sign = lone && shared ? arena_printf(p->arena, "%s %s", grid_lone_glyph(p, true),
+                                                     grid_shared_glyph(p, true))
+                       : lone         ? grid_lone_glyph(p, true)
+                                      : grid_shared_glyph(p, true);
+    const char *words = grid_key_parts(g);
+    pairs[1] = (struct pair){
+        sign,
+        shared ? arena_printf(p->arena, "%s; %s: several", words, grid_shared_glyph(p, true))
+               : words,
+        ""};
+    return 2;
+}
+
+enum { MARK_SIGNS = 2 };
+
 static void write_signs(struct page *p, const struct grid_plane *g)
 {
     const struct grid *grid = g->grid;
-    struct pair *pairs = NEW_ARRAY(p->arena, grid->lines.n + 1, struct pair);
-    for (size_t i = 0; i < grid->lines.n; i++) {
+    size_t n = grid->lines.n;
+    struct pair *pairs = NEW_ARRAY(p->arena, n + 1 + MARK_SIGNS, struct pair);
+    for (size_t i = 0; i < n; i++) {
         const char *s = g->symbols[i];
         pairs[i] =
             (struct pair){arena_printf(p->arena, "%s%s%s%s", s, s, s, s), grid_key_line(g, i), ""};
     }
-    pairs[grid->lines.n] = (struct pair){p->ascii ? ". ." : "· ·", GRID_KEY_DECADES, ""};
-    page_pairs(p, pairs, grid->lines.n + 1);
+    pairs[n++] = (struct pair){p->ascii ? ". ." : "· ·", GRID_KEY_DECADES, ""};
+    n += add_mark_signs(&pairs[n], g);
+    page_pairs(p, pairs, n);
     page_blank(p);
 }
 
@@ -98,20 +145,43 @@ static void add_company(struct text *t, const struct grid_plane *g, size_t first
             text_printf(t, "%s %s", i == first ? "" : ",", label_of(g, i));
 }
 
-static void list_company(struct lines *to, const struct grid_plane *g)
+static void list_company(struct lines *to, const struct grid_plane *g, bool part)
 {
     struct text t;
     text_init(&t, g->page->arena);
     for (size_t i = 0; i < g->grid->marks.n; i++) {
-        if (!g->spots[i].placed || g->spots[i].first != i || g->spots[i].company < 2)
+        const struct grid_spot *s = &g->spots[i];
+        if (!s->placed || s->first != i || s->company < 2 || grid_is_part(g->grid, i) != part ||
+            (part && !s->labelled))
             continue;
         if (t.n)
             text_add(&t, ";");
         else
-            text_printf(&t, "At one place (%s):", grid_shared_glyph(g->page));
+            text_printf(&t, "At one place (%s):", grid_shared_glyph(g->page, part));
         add_company(&t, g, i);
     }
     add_remark(g, to, &t);
+}
+
+/* "Not drawn, for want of room: 3 of 20 hollow marks (1a, 2b, 7a)" */
+static void list_yielding(struct lines *to, const struct grid_plane *g)
+{
+    struct text t, all;
+    text_init(&t, g->page->arena);
+    text_init(&all, g->page->arena);
+    size_t n = 0, of = 0;
+    for (size_t i = 0; i < g->grid->marks.n; i++) {
+        if (!grid_is_part(g->grid, i) || !g->spots[i].placed)
+            continue;
+        of++;
+        if (g->spots[g->spots[i].first].labelled)
+            continue;
+        text_printf(&t, "%s%s", n++ ? ", " : "", label_of(g, i));
+    }
+    if (n)
+        text_printf(&all, "Not drawn, for want of room: %zu of the %zu hollow marks (%s)", n, of,
+                    text_str(&t));
+    add_remark(g, to, &all);
 }
 
 /* "5 -> 5a, 5b": all arrows from one mark. */
@@ -141,12 +211,13 @@ static void list_arrows(struct lines *to, const struct grid_plane *g)
 
 static bool is_crowded(const struct grid_plane *g, size_t i)
 {
-    return g->spots[i].placed && !g->spots[g->spots[i].first].labelled;
+    return g->spots[i].placed && !g->spots[g->spots[i].first].labelled && !grid_is_part(g->grid, i);
 }
 
 static bool is_clamped(const struct grid_plane *g, size_t i)
 {
-    return g->spots[i].placed && g->spots[i].clamped;
+    bool drawn = !grid_is_part(g->grid, i) || g->spots[g->spots[i].first].labelled;
+    return g->spots[i].placed && g->spots[i].clamped && drawn;
 }
 
 static bool is_never(const struct grid_plane *g, size_t i)
@@ -168,9 +239,11 @@ static bool is_nowhere(const struct grid_plane *g, size_t i)
 struct lines grid_key_remarks(const struct grid_plane *g)
 {
     struct lines to = {0};
-    list_company(&to, g);
+    list_company(&to, g, false);
+    list_company(&to, g, true);
     list_arrows(&to, g);
     list_marks(&to, g, "In the picture without a label, for want of room:", is_crowded);
+    list_yielding(&to, g);
     list_marks(&to, g, "Beyond the axes, drawn at the edge of the picture:", is_clamped);
     list_marks(&to, g, "Not in the picture, for it never happens:", is_never);
     list_marks(&to, g, "Not in the picture, for it does no damage:", is_harmless);

@@ -3,7 +3,7 @@
  * nothing but thin dots. Beside it stands a blank, the edge or its own mark, so that
  * it never reads as part of a line, an arrow or another label; where it is not beside
  * its own mark, it does not touch any other one. A label that finds no place stands
- * in the key alone. Owns nothing. */
+ * in the key alone, and with it a mark that is a part of another. Owns nothing. */
 #include <string.h>
 
 #include "base/utf8.h"
@@ -129,9 +129,46 @@ static void place_label(struct grid_plane *g, size_t i)
         s->labelled = try_places(g, s, joined_label(g, i, n));
 }
 
+/* Marks and labels leave this cell alone. */
+static bool is_clear(const struct grid_plane *g, int x, int y)
+{
+    const struct grid_cell *c = grid_cell_at(g, x, y);
+    return !c || c->layer < LAYER_LABEL;
+}
+
+/* A part of a mark stands on nothing but dots and lines, and beside no other mark or label, so
+ * that it takes nothing from them. */
+static bool has_room_for_part(const struct grid_plane *g, const struct grid_spot *s)
+{
+    enum grid_layer layer = grid_cell_at(g, s->x, s->y)->layer;
+    return (layer <= LAYER_RISK || layer == LAYER_LINE) && is_clear(g, s->x - 1, s->y) &&
+           is_clear(g, s->x + 1, s->y);
+}
+
+/* Never without its label. */
+static void place_part(struct grid_plane *g, size_t i)
+{
+    const struct grid_spot *s = &g->spots[i];
+    if (!has_room_for_part(g, s))
+        return;
+    place_label(g, i);
+    if (s->labelled)
+        grid_put(g, s->x, s->y,
+                 s->company > 1 ? grid_shared_glyph(g->page, true) : grid_lone_glyph(g->page, true),
+                 LAYER_MARK);
+}
+
+static bool is_first(const struct grid_plane *g, size_t i, bool part)
+{
+    return g->spots[i].placed && g->spots[i].first == i && grid_is_part(g->grid, i) == part;
+}
+
 void grid_draw_labels(struct grid_plane *g)
 {
     for (size_t i = 0; i < g->grid->marks.n; i++)
-        if (g->spots[i].placed && g->spots[i].first == i)
+        if (is_first(g, i, false))
             place_label(g, i);
+    for (size_t i = 0; i < g->grid->marks.n; i++)
+        if (is_first(g, i, true))
+            place_part(g, i);
 }

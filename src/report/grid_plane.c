@@ -144,13 +144,19 @@ bool grid_plane_widen(struct grid_plane *g)
     return add_decade(left, d_low, d_high, d_low, -1) || wider;
 }
 
+bool grid_is_part(const struct grid *grid, size_t i)
+{
+    return grid->marks.at[i].part_of >= 0;
+}
+
 static void find_company(struct grid_plane *g, size_t i)
 {
     struct grid_spot *s = &g->spots[i];
     s->first = i;
     for (size_t j = g->grid->marks.n; j-- > 0;) {
         const struct grid_spot *o = &g->spots[j];
-        if (!o->placed || o->x != s->x || o->y != s->y)
+        bool alike = grid_is_part(g->grid, i) == grid_is_part(g->grid, j);
+        if (!o->placed || !alike || o->x != s->x || o->y != s->y)
             continue;
         s->company++;
         s->first = j;

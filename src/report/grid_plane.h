@@ -11,7 +11,7 @@
  * 10^(frequency_high - k).
  * Invariant: 2 to 12 decades on each axis; no mark in the outermost rows and columns
  * of an axis with fewer than 12; a cell is drawn by the layer that matters most
- * there. */
+ * there; parts of marks take nothing from the marks and their labels. */
 #ifndef REPORT_GRID_PLANE_H
 #define REPORT_GRID_PLANE_H
 
@@ -33,9 +33,10 @@ struct grid_spot {
     bool placed;  /* false: no frequency or no damage that a log axis can show */
     bool clamped; /* beyond the axes, drawn at the edge */
     int x, y;
-    size_t company; /* marks in this cell, itself included */
-    size_t first;   /* the first mark in this cell */
-    bool labelled;  /* of the first mark: the picture has a label for this cell */
+    size_t company; /* marks in this cell, itself included; of parts of marks, the parts */
+    size_t first;   /* the first of them */
+    bool labelled;  /* of the first one: the picture has a label for them; parts without a
+                       label are not in the picture */
 };
 
 struct grid_plane {
@@ -62,14 +63,18 @@ void grid_plane_open(struct grid_plane *g);
 
 /* The symbol of each line into `symbols`: its own, or another one where that does not fit. */
 void grid_choose_symbols(struct grid_plane *g);
-/* Draw all layers, in this order; grid_draw.c, grid_arrow.c and grid_label.c. */
+/* Draw all layers, in this order; grid_draw.c, grid_arrow.c and grid_label.c. The labels bring
+ * the parts of marks with them. */
 void grid_draw_lines(struct grid_plane *g);
 void grid_draw_marks(struct grid_plane *g);
 void grid_draw_arrows(struct grid_plane *g);
 void grid_draw_labels(struct grid_plane *g);
 
-/* The sign of a cell that several marks share. */
-const char *grid_shared_glyph(const struct page *p);
+/* Whether mark i is a part of another one. */
+bool grid_is_part(const struct grid *grid, size_t i);
+/* The signs of a mark, and of a cell that several share: of whole ones and of parts. */
+const char *grid_lone_glyph(const struct page *p, bool part);
+const char *grid_shared_glyph(const struct page *p, bool part);
 
 /* The cell, or NULL outside the plane. */
 struct grid_cell *grid_cell_at(const struct grid_plane *g, int x, int y);

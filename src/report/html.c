@@ -134,6 +134,7 @@ static void put_block(struct html *h, const struct block *b, const char *id)
     case BLOCK_TABLE: html_table(h, b, id, b->title, NULL); break;
     case BLOCK_GRID: html_grid(h, b, id); break;
     case BLOCK_CURVE: html_curve(h, b, id); break;
+    case BLOCK_SIGNATURES: html_signatures(h, b, id); break;
     }
 }
 

@@ -43,6 +43,7 @@ extern const size_t html_style_parts;
 void html_table(struct html *h, const struct block *b, const char *id, const char *caption,
                 const char *const *signs);
 void html_pairs(struct html *h, const struct block *b, const char *id);
+void html_signatures(struct html *h, const struct block *b, const char *id);
 void html_grid(struct html *h, const struct block *b, const char *id);
 void html_curve(struct html *h, const struct block *b, const char *id);
 

@@ -3,7 +3,7 @@
  * 45 degrees. Decades, words and the key are those of the text grid; places are exact
  * here, so marks stand at their very point. Owns nothing.
  * Invariant: every mark is in the picture or named below it, and no label covers a mark
- * or another label. */
+ * or another label. Parts of marks cover no whole one and no label. */
 #include <math.h>
 #include <string.h>
 
@@ -129,7 +129,8 @@ static void find_company(struct picture *f)
         for (size_t k = i; s->placed && k-- > 0;) {
             bool near = fabs(f->at[k].x - f->at[i].x) < ONE_PLACE &&
                         fabs(f->at[k].y - f->at[i].y) < ONE_PLACE;
-            if (g->spots[k].placed && g->spots[k].first == k && near)
+            bool alike = grid_is_part(g->grid, k) == grid_is_part(g->grid, i);
+            if (g->spots[k].placed && g->spots[k].first == k && near && alike)
                 s->first = k;
         }
         if (s->placed)
@@ -314,6 +315,8 @@ static void put_arrows(struct picture *f)
 
 static enum svg_shape shape_of(const struct grid_plane *g, size_t i)
 {
+    if (grid_is_part(g->grid, i))
+        return g->spots[i].company > 1 ? SVG_PARTS : SVG_PART;
     if (g->spots[i].company > 1)
         return SVG_DIAMOND;
     return g->grid->marks.at[i].arrow_from >= 0 ? SVG_RING : SVG_DISC;
@@ -322,6 +325,11 @@ static enum svg_shape shape_of(const struct grid_plane *g, size_t i)
 static bool is_first(const struct grid_plane *g, size_t i)
 {
     return g->spots[i].placed && g->spots[i].first == i;
+}
+
+static bool is_first_whole(const struct grid_plane *g, size_t i)
+{
+    return is_first(g, i) && !grid_is_part(g->grid, i);
 }
 
 /* The first n labels of a place, and a sign that there are more: "6, 7 ..". */
@@ -363,25 +371,48 @@ static void keep_marks(struct picture *f)
 {
     double r = SVG_MARK + 1;
     for (size_t i = 0; i < f->plane.grid->marks.n; i++)
-        if (is_first(&f->plane, i))
+        if (is_first_whole(&f->plane, i))
             place_add_box(&f->places, f->at[i].x - r, f->at[i].y - r, 2 * r, 2 * r);
+}
+
+static void put_mark(struct picture *f, size_t i)
+{
+    const struct grid_plane *g = &f->plane;
+    const char *all = joined(f, i, g->spots[i].company);
+    const char *name = page_clean(page_of(f), g->grid->marks.at[i].name);
+    bool alone = g->spots[i].company == 1;
+    svg_mark(f->html, shape_of(g, i), f->at[i].x, f->at[i].y,
+             alone ? arena_printf(page_of(f)->arena, "%s: %s", all, name) : all);
+}
+
+/* A part has its own place free of whole marks and labels, and a label, or it is left out. */
+static void put_part(struct picture *f, size_t i)
+{
+    double r = SVG_PART_MARK + 1;
+    struct place_box own = {f->at[i].x - r, f->at[i].y - r, 2 * r, 2 * r};
+    size_t n = f->places.boxes.n;
+    if (!place_is_free(&f->places, own))
+        return;
+    place_add_box(&f->places, own.x, own.y, own.width, own.height);
+    put_mark_label(f, i);
+    if (f->plane.spots[i].labelled)
+        put_mark(f, i);
+    else
+        f->places.boxes.n = n;
 }
 
 static void put_marks(struct picture *f)
 {
     const struct grid_plane *g = &f->plane;
-    for (size_t i = 0; i < g->grid->marks.n; i++) {
-        if (!is_first(g, i))
-            continue;
-        const char *all = joined(f, i, g->spots[i].company);
-        const char *name = page_clean(page_of(f), g->grid->marks.at[i].name);
-        bool alone = g->spots[i].company == 1;
-        svg_mark(f->html, shape_of(g, i), f->at[i].x, f->at[i].y,
-                 alone ? arena_printf(page_of(f)->arena, "%s: %s", all, name) : all);
-    }
     for (size_t i = 0; i < g->grid->marks.n; i++)
-        if (is_first(g, i))
+        if (is_first_whole(g, i))
+            put_mark(f, i);
+    for (size_t i = 0; i < g->grid->marks.n; i++)
+        if (is_first_whole(g, i))
             put_mark_label(f, i);
+    for (size_t i = 0; i < g->grid->marks.n; i++)
+        if (is_first(g, i) && grid_is_part(g->grid, i))
+            put_part(f, i);
 }
 
 /* --- the picture and what is below --- */
@@ -427,13 +458,15 @@ static void put_sign(struct html *h, const char *sample, const char *words)
 
 static void put_shapes(struct html *h, const struct grid_plane *g)
 {
-    static const char *const words[] = {"a mark", "a mark that an arrow leads to",
-                                        "marks at one place"};
-    bool seen[3] = {0};
+    const char *const words[] = {
+        grid_key_wholes(g), "a mark that an arrow leads to", "marks at one place",
+        grid_key_parts(g),
+        arena_printf(h->page.arena, "several at one place: %s", grid_key_parts(g))};
+    bool seen[sizeof words / sizeof *words] = {0};
     for (size_t i = 0; i < g->grid->marks.n; i++)
-        if (is_first(g, i))
+        if (is_first(g, i) && (!grid_is_part(g->grid, i) || g->spots[i].labelled))
             seen[shape_of(g, i)] = true;
-    for (int k = SVG_DISC; k <= SVG_DIAMOND; k++)
+    for (int k = SVG_DISC; k <= SVG_PARTS; k++)
         if (seen[k])
             put_sign(h, svg_mark_sample(h, (enum svg_shape)k), words[k]);
 }

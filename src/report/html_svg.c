@@ -104,23 +104,35 @@ double svg_text_width(const char *s)
 
 /* --- marks --- */
 
-static void put_shape(struct html *h, enum svg_shape shape, double x, double y)
+static void put_diamond(struct html *h, const char *class, double x, double y, double r)
 {
     char a[32], b[32], c[32], d[32], e[32], f[32];
-    if (shape == SVG_DIAMOND) {
-        double r = SVG_MARK + 1.5;
-        svg_length(a, x);
-        svg_length(b, y - r);
-        svg_length(c, x + r);
-        svg_length(d, y);
-        svg_length(e, y + r);
-        svg_length(f, x - r);
-        text_printf(h->out, "<path class=\"disc\" d=\"M%s %sL%s %sL%s %sL%s %sZ\"/>", a, b, c, d, a,
-                    e, f, d);
-        return;
+    svg_length(a, x);
+    svg_length(b, y - r);
+    svg_length(c, x + r);
+    svg_length(d, y);
+    svg_length(e, y + r);
+    svg_length(f, x - r);
+    text_printf(h->out, "<path class=\"%s\" d=\"M%s %sL%s %sL%s %sL%s %sZ\"/>", class, a, b, c, d,
+                a, e, f, d);
+}
+
+static void put_circle(struct html *h, const char *class, double x, double y, int r)
+{
+    char a[32], b[32];
+    text_printf(h->out, "<circle class=\"%s\" cx=\"%s\" cy=\"%s\" r=\"%d\"/>", class,
+                svg_length(a, x), svg_length(b, y), r);
+}
+
+static void put_shape(struct html *h, enum svg_shape shape, double x, double y)
+{
+    switch (shape) {
+    case SVG_DISC: put_circle(h, "disc", x, y, SVG_MARK); break;
+    case SVG_RING: put_circle(h, "ring", x, y, SVG_MARK); break;
+    case SVG_DIAMOND: put_diamond(h, "disc", x, y, SVG_MARK + 1.5); break;
+    case SVG_PART: put_circle(h, "part", x, y, SVG_PART_MARK); break;
+    case SVG_PARTS: put_diamond(h, "part", x, y, SVG_PART_MARK + 1.5); break;
     }
-    text_printf(h->out, "<circle class=\"%s\" cx=\"%s\" cy=\"%s\" r=\"%d\"/>",
-                shape == SVG_RING ? "ring" : "disc", svg_length(a, x), svg_length(b, y), SVG_MARK);
 }
 
 void svg_mark(struct html *h, enum svg_shape shape, double x, double y, const char *words)

@@ -28,8 +28,9 @@ const char *svg_sample(struct html *h, const char *class, const char *symbol);
 /* At least the width of s in SVG_FONT on the usual fonts without serifs. s is clean. */
 double svg_text_width(const char *s);
 
-enum svg_shape { SVG_DISC, SVG_RING, SVG_DIAMOND };
-enum { SVG_MARK = 5 /* half the width of a mark */ };
+/* The last two are hollow and smaller: a part of a mark, and several. */
+enum svg_shape { SVG_DISC, SVG_RING, SVG_DIAMOND, SVG_PART, SVG_PARTS };
+enum { SVG_MARK = 5, SVG_PART_MARK = 4 /* half the width of a mark, and of a part of one */ };
 /* A mark with what it is, shown where a pointer rests on it. */
 void svg_mark(struct html *h, enum svg_shape shape, double x, double y, const char *words);
 /* A mark alone, for a key. */

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Tables, entries and named values as HTML. A number stands in its cell as two spans, what
- * is left of the point and the rest; the rest is as wide in every row (class w1, w2 ...: so
- * many digits), so that points stand below each other. Owns nothing.
+/* Tables, entries, named values and lines to be signed as HTML. A number stands in its cell as
+ * two spans, what is left of the point and the rest; the rest is as wide in every row (class
+ * w1, w2 ...: so many digits), so that points stand below each other. Owns nothing.
  * Invariant: every cell of the block is on the page, as the text writer would show it on a
  * page wide enough. */
 #include <assert.h>
@@ -304,5 +304,27 @@ void html_pairs(struct html *h, const struct block *b, const char *id)
     html_raw(h, "<tbody>\n");
     for (size_t i = 0; i < b->rows.n; i++)
         put_pair(h, b, i);
+    html_raw(h, "</tbody>\n</table>\n");
+}
+
+/* --- lines to be signed --- */
+
+void html_signatures(struct html *h, const struct block *b, const char *id)
+{
+    html_raw(h, "<table class=\"signed\"");
+    put_id(h, id);
+    put_caption(h, "caption", b->title);
+    html_raw(h, "<thead>\n<tr><td></td>");
+    for (size_t j = 1; j < b->columns.n; j++) {
+        html_raw(h, "<th scope=\"col\">");
+        html_text(h, b->columns.at[j].head);
+        html_raw(h, "</th>");
+    }
+    html_raw(h, "</tr>\n</thead>\n<tbody>\n");
+    for (size_t i = 0; i < b->rows.n; i++) {
+        html_raw(h, "<tr><th scope=\"row\">");
+        html_text(h, cell_of(b, i, 0)->text);
+        html_raw(h, "</th><td></td><td></td></tr>\n");
+    }
     html_raw(h, "</tbody>\n</table>\n");
 }

@@ -196,6 +196,8 @@ static void put_mark(struct json *j, const struct grid *g, const struct grid_mar
     text_byte(j->out, '}');
     if (m->arrow_from >= 0)
         put_member(j, "from", g->marks.at[m->arrow_from].label, false);
+    if (m->part_of >= 0)
+        put_member(j, "part-of", g->marks.at[m->part_of].label, false);
     text_byte(j->out, '}');
 }
 
@@ -298,8 +300,8 @@ static void put_curve(struct json *j, const struct curve *c)
 
 static void put_block(struct json *j, const struct block *b)
 {
-    static const char *const types[] = {"heading", "note", "pairs", "table", "grid",
-                                        "curve"};
+    static const char *const types[] = {"heading", "note",  "pairs",     "table",
+                                        "grid",    "curve", "signatures"};
     text_byte(j->out, '{');
     put_member(j, "key", b->key, true);
     put_member(j, "type", types[b->type], false);
@@ -309,6 +311,7 @@ static void put_block(struct json *j, const struct block *b)
     case BLOCK_HEADING: break;
     case BLOCK_NOTE: put_member(j, "text", b->text, false); break;
     case BLOCK_PAIRS: put_pairs(j, b); break;
+    case BLOCK_SIGNATURES:
     case BLOCK_TABLE: put_table(j, b); break;
     case BLOCK_GRID: put_grid(j, b->grid); break;
     case BLOCK_CURVE: put_curve(j, b->curve); break;

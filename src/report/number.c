@@ -10,14 +10,25 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { USUAL_DIGITS = 3, MOST_DIGITS = 12, YEAR_DECIMALS = 2 };
+enum {
+    USUAL_DIGITS = 3,
+    MOST_DIGITS = 12, /* a number that is the same to so many has no error of rounding */
+    YEAR_DECIMALS = 2,
+    NEAR_ONE_DECIMALS = 6,
+    GROUP = 3,
+    DIGITS_BEFORE_POINT = 4 /* of an amount of money: a lower prefix is not worth more */
+};
 
-/* |x| = d.ddd * 10^exponent, zeros at the end left out. */
+/* From here to 1 it matters how much is missing. */
+static const double NEAR_ONE = 0.99;
+
+/* |x| = d.ddd * 10^exponent, of n digits. */
 struct decimal {
     char digits[MOST_DIGITS + 1];
     int n, exponent;
 };
 
+/* x to n digits, zeros at the end left out. */
 static struct decimal decimal_of(double x, int n)
 {
     char raw[64];
@@ -47,23 +58,44 @@ static struct decimal decimal_of_year(double x)
     return decimal_of(x, between(before + YEAR_DECIMALS, 1, MOST_DIGITS));
 }
 
-/* A chance below 1 never reads as 1 (down to a complement of 1e-12): 0.9999, not 1. */
+/* Three digits of what is missing to 1. */
+static struct decimal decimal_near_one(double x)
+{
+    int missing = USUAL_DIGITS - 1 - decimal_of(1 - x, USUAL_DIGITS).exponent;
+    return decimal_of(x, between(missing, NEAR_ONE_DECIMALS, MOST_DIGITS));
+}
+
+/* Whether the digits of d, zeros at its end left out, are all that x has. */
+static bool is_exact(const struct decimal *d, double x)
+{
+    return decimal_of(x, MOST_DIGITS).n <= d->n;
+}
+
+/* A chance below 1 never reads as 1 (down to a complement of 1e-12): 0.9999, not 1. What
+ * was rounded keeps the zeros at its end. */
 static struct decimal decimal_in_style(double x, enum number_style style)
 {
     if (style == STYLE_YEAR)
         return decimal_of_year(x);
-    struct decimal d = decimal_of(x, USUAL_DIGITS);
+    if (style == STYLE_GROUPED && x >= NEAR_ONE && x < 1)
+        return decimal_near_one(x);
+    int n = USUAL_DIGITS;
+    struct decimal d = decimal_of(x, n);
     bool chance = style == STYLE_PROBABILITY || style == STYLE_PERCENT;
-    for (int n = USUAL_DIGITS + 1; chance && x < 1 && is_one(&d) && n <= MOST_DIGITS; n++)
-        d = decimal_of(x, n);
+    while (chance && x < 1 && is_one(&d) && n < MOST_DIGITS)
+        d = decimal_of(x, ++n);
+    if (!is_exact(&d, x))
+        d.n = n;
     return d;
 }
 
 /* Rounded exponents from `low` to below `high` are written without an exponent. */
 static bool is_fixed(int exponent, enum number_style style)
 {
-    int low = style == STYLE_FREQUENCY ? -1 : -2;
-    int high = style == STYLE_MONEY || style == STYLE_YEAR ? 9 : 5;
+    int low = style == STYLE_FREQUENCY ? -1 : style == STYLE_MONEY ? -3 : -2;
+    int high = style == STYLE_GROUPED                        ? MOST_DIGITS
+               : style == STYLE_MONEY || style == STYLE_YEAR ? 9
+                                                             : 5;
     return exponent >= low && exponent < high;
 }
 
@@ -85,6 +117,17 @@ static char *put_fixed(char *to, const struct decimal *d)
         to = put_digits(to, d, d->exponent + 1, d->n);
     }
     return to;
+}
+
+/* Blanks between groups of three digits before the point; `text` has room for them. */
+static void group_digits(char *text)
+{
+    size_t n = strspn(text, "0123456789");
+    for (size_t i = n; i > GROUP; i -= GROUP) {
+        char *rest = text + i - GROUP;
+        memmove(rest + 1, rest, strlen(rest) + 1);
+        *rest = ' ';
+    }
 }
 
 static char *put_scientific(char *to, const struct decimal *d)
@@ -109,8 +152,11 @@ char *number_scaled(char *buf, double x, enum number_style style, int shift)
     char *to = buf;
     if (x < 0)
         *to++ = '-';
+    char *from = to;
     to = is_fixed(d.exponent, style) ? put_fixed(to, &d) : put_scientific(to, &d);
     *to = 0;
+    if (style == STYLE_GROUPED)
+        group_digits(from);
     return buf;
 }
 
@@ -142,10 +188,8 @@ int number_exponent(double x)
 int money_shift(int largest, int smallest)
 {
     int shift = largest < 3 ? 0 : largest < 6 ? 3 : largest < 9 ? 6 : 9;
-    for (int lower = shift; lower >= 0 && largest - lower < 5; lower -= 3)
-        if (smallest - lower >= -2)
-            return lower;
-    return shift;
+    bool small = smallest - shift < -1, room = largest - (shift - 3) < DIGITS_BEFORE_POINT;
+    return shift > 0 && small && room ? shift - 3 : shift;
 }
 
 const char *money_prefix(int shift)
@@ -160,7 +204,7 @@ const char *money_text(struct arena *a, double x, const char *unit)
     int shift = 0;
     if (isfinite(x) && x != 0 && *unit)
         shift = money_shift(number_exponent(x), number_exponent(x));
-    number_scaled(buf, x, STYLE_PLAIN, shift);
+    number_scaled(buf, x, STYLE_MONEY, shift);
     return *unit ? arena_printf(a, "%s %s%s", buf, money_prefix(shift), unit) : arena_str(a, buf);
 }
 

@@ -73,11 +73,12 @@ void line_end(struct line *l)
 }
 
 /* Bytes of a part of a word that is wider than the line: up to a stroke, point or plus in
- * its last half, so that paths and names of figures break between their steps. */
+ * its last half, so that paths and names of figures break between their steps, or up to the
+ * beginning of an escape such as \u{200d}, which stays whole. */
 static size_t part_of_word(const char *s, size_t n)
 {
     for (size_t i = n; i > n / 2; i--)
-        if (strchr("/.+", s[i - 1]))
+        if (strchr("/.+", s[i - 1]) || s[i] == '\\')
             return i;
     return n;
 }

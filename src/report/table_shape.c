@@ -84,9 +84,7 @@ static void show_value(const struct page *p, struct shown *s, const struct cell 
             show_number(p, s, s->text);
         return;
     }
-    show_number(p, s,
-                number_scaled(digits, c->number,
-                              style == STYLE_MONEY && shift ? STYLE_PLAIN : style, shift));
+    show_number(p, s, number_scaled(digits, c->number, style, shift));
     if (style == STYLE_FREQUENCY && c->number >= 0)
         s->period = arena_str(p->arena, return_period_text(period, c->number));
 }

@@ -189,6 +189,68 @@ static void write_pairs(struct page *p, const struct block *b)
     page_pairs(p, pairs, b->rows.n);
 }
 
+/* --- lines to be signed --- */
+
+enum { SIGNED_NAME = 44, SIGNED_DATE = 14, BETWEEN_SIGNED = 2, WIDEST_ROLE = 24 };
+
+static void put_blank_line(struct line *l, size_t from, size_t n)
+{
+    line_to(l, from);
+    for (size_t i = 0; i < n; i++)
+        line_add(l, "_", INK_PLAIN);
+}
+
+/* What a signature has room in: the columns of the role, and of the line for a name. */
+struct signed_shape {
+    size_t role, name;
+};
+
+static struct signed_shape signed_shape_of(const struct page *p, const struct block *b)
+{
+    struct signed_shape s = {.role = 2};
+    for (size_t i = 0; i < b->rows.n; i++) {
+        size_t columns = utf8_columns(page_clean(p, b->rows.at[i].at[0].text));
+        s.role = columns > s.role ? columns : s.role;
+    }
+    s.role = s.role < WIDEST_ROLE ? s.role : WIDEST_ROLE;
+    s.name = p->width - s.role - 2 * BETWEEN_SIGNED - SIGNED_DATE;
+    s.name = s.name < SIGNED_NAME ? s.name : SIGNED_NAME;
+    return s;
+}
+
+/* The role, with both lines beside its last line of text. */
+static void write_signed_row(struct page *p, const struct signed_shape *s, const char *role)
+{
+    struct lines roles = page_wrap(p, role, s->role);
+    size_t name = s->role + BETWEEN_SIGNED, date = name + s->name + BETWEEN_SIGNED;
+    for (size_t i = 0; i < roles.n; i++) {
+        struct line l = line_begin(p);
+        line_add(&l, roles.at[i], INK_PLAIN);
+        if (i + 1 == roles.n) {
+            put_blank_line(&l, name, s->name);
+            put_blank_line(&l, date, SIGNED_DATE);
+        }
+        line_end(&l);
+    }
+}
+
+/* Rows are parted by an empty line, to write in. */
+static void write_signatures(struct page *p, const struct block *b)
+{
+    struct signed_shape s = signed_shape_of(p, b);
+    for (size_t i = 0; i < b->rows.n; i++) {
+        if (i)
+            page_blank(p);
+        write_signed_row(p, &s, page_clean(p, b->rows.at[i].at[0].text));
+    }
+    struct line l = line_begin(p);
+    line_to(&l, s.role + BETWEEN_SIGNED);
+    line_add(&l, b->columns.at[1].head, INK_FAINT);
+    line_to(&l, s.role + 2 * BETWEEN_SIGNED + s.name);
+    line_add(&l, b->columns.at[2].head, INK_FAINT);
+    line_end(&l);
+}
+
 static void write_title(struct page *p, const struct block *b)
 {
     if (b->type == BLOCK_HEADING || !b->title || !*b->title)
@@ -207,6 +269,7 @@ static void write_block(struct page *p, const struct block *b)
     case BLOCK_TABLE: page_table(p, b); break;
     case BLOCK_GRID: page_grid(p, b->grid); break;
     case BLOCK_CURVE: page_curve(p, b->curve); break;
+    case BLOCK_SIGNATURES: write_signatures(p, b); break;
     }
 }
 

@@ -8,6 +8,7 @@
 
 #include "doc/json.h"
 #include "model/bind.h"
+#include "model/supplied.h"
 #include "store/projection.h"
 
 struct cell {
@@ -282,7 +283,7 @@ static void write_references(struct derivation *d, const struct node *node, cons
 {
     struct references refs = {0};
     struct query *q = &d->reference;
-    walk_references(d->scratch, kinds[d->kind].table, node, data, &refs);
+    kind_references(d->scratch, d->kind, node, data, &refs);
     for (size_t i = 0; i < refs.n && d->status == OHMEN_OK; i++) {
         query_bind_text(q, 1, kinds[d->kind].name);
         query_bind_text(q, 2, d->id);

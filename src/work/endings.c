@@ -3,15 +3,6 @@
  * sentence; owns nothing. */
 #include "work/work.h"
 
-static void figure_cell(struct job *j, struct row *row, figure_id id)
-{
-    if (id == FIGURE_NONE)
-        row_empty(j->report, row);
-    else
-        row_number(j->report, row, figure_value(j->figures, id),
-                   figure_name(j->figures, j->arena, id));
-}
-
 static double value_of(const struct job *j, figure_id id)
 {
     return id == FIGURE_NONE ? 0 : figure_value(j->figures, id);

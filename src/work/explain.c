@@ -104,13 +104,50 @@ static void explain_table(struct explaining *x, const struct consumed *first)
         explain_row(x->job, b, x->todo.at[i], x->levels.at[i]);
 }
 
-/* What the figure is; whose damage counts only where money is told. */
+/* Whose damage a figure counts; NULL where it counts none. */
+static const char *damage_words(struct job *j, figure_id id)
+{
+    const struct figure *g = figure_at(j->figures, id);
+    const char *who = NULL;
+    switch (g->property) {
+    case PROPERTY_CATEGORY: return arena_printf(j->arena, "the category %s", g->q1);
+    case PROPERTY_BORNE: who = g->q1; break;
+    case PROPERTY_NET:
+    case PROPERTY_BENEFIT:
+    case PROPERTY_AVOIDS: who = g->q2; break;
+    case PROPERTY_INVEST:
+    case PROPERTY_RUNNING:
+    case PROPERTY_PRESENT_COST:
+    case PROPERTY_PER_HOUR:
+    case PROPERTY_FATALITY_WORTH: return NULL;
+    default: break;
+    }
+    if (who)
+        return arena_printf(j->arena, "what %s bears", who);
+    return figure_dim(j->figures, id).e[DIM_MONEY] != 0 ? perspective_words(j) : NULL;
+}
+
+/* Harm to people is told in years too: ", 1 in 18700 a". */
+static const char *once_in_words(struct job *j, figure_id id)
+{
+    enum property p = figure_at(j->figures, id)->property;
+    double often = figure_value(j->figures, id);
+    bool harm = p == PROPERTY_DEATH || p == PROPERTY_INJURY || p == PROPERTY_FATALITIES ||
+                p == PROPERTY_AVOIDS_FATALITIES;
+    char words[48];
+    if (!harm || often <= 0 || often >= 1)
+        return "";
+    return arena_printf(j->arena, ", %s", return_period_text(words, often));
+}
+
+/* What the figure is, and whose damage it counts. */
 static void figure_note(struct job *j, figure_id id)
 {
-    bool money = figure_dim(j->figures, id).e[DIM_MONEY] != 0;
-    report_note(j->report, "figure", "%s = %s: %s.%s", figure_name(j->figures, j->arena, id),
-                shown_value(j, id), properties[figure_at(j->figures, id)->property].help,
-                money ? arena_printf(j->arena, " Damage counted: %s.", perspective_words(j)) : "");
+    const char *damage = damage_words(j, id);
+    report_note(j->report, "figure", "%s = %s%s: %s.%s", figure_name(j->figures, j->arena, id),
+                shown_value(j, id), once_in_words(j, id),
+                properties[figure_at(j->figures, id)->property].help,
+                damage ? arena_printf(j->arena, " Damage counted: %s.", damage) : "");
 }
 
 /* Where the mean is not the value at the means: both, and how the mean came about. */

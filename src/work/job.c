@@ -272,18 +272,6 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e)
     return status;
 }
 
-/* Sites do not contain themselves. */
-bool site_is_in(const struct model *m, const char *site, const char *whole)
-{
-    while (site) {
-        if (text_equal(site, whole))
-            return true;
-        const struct site *s = model_get(m, KIND_SITE, site);
-        site = s ? s->in : NULL;
-    }
-    return false;
-}
-
 bool job_at_site(const struct job *j, const char *site)
 {
     return !j->query.site || site_is_in(j->model, site, j->query.site);

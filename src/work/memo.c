@@ -128,10 +128,11 @@ static void costs(struct memo *m)
     double yearly = running(m, x);
     report_note(m->j->report, "costs",
                 "Costs: %s%s%s%s; as a present value %s, the same as %s in each year of the "
-                "horizon.",
+                "horizon. %s",
                 *once ? "an investment of " : "no investment", once,
                 yearly > 0 ? ", and to run it " : "", yearly > 0 ? money_rate(m, yearly) : "",
-                money(m, value_of(m, x->present_cost)), money_rate(m, value_of(m, x->annual_cost)));
+                money(m, value_of(m, x->present_cost)), money_rate(m, value_of(m, x->annual_cost)),
+                payback_sentence(m->j, m->w, x));
 }
 
 /* --- what it avoids --- */
@@ -294,6 +295,7 @@ static void part_sign(struct memo *m)
     report_note(m->j->report, "to-sign",
                 "To be signed by who prepared it, by who checked it, and, as the decision, by %s.",
                 owner ? owner : "its owner, whom the register does not name");
+    part_signatures(m->j);
 }
 
 /* --- the memo --- */
@@ -316,6 +318,9 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     report_heading(j->report, 2, "What it rests on, and what would turn it");
     part_rests_on(j, w);
     part_turn(j, w);
+    report_heading(j->report, 2, "Money over the years");
+    part_options(j, w);
+    part_flow(j, w);
     part_left_out(&m);
     part_sign(&m);
 }

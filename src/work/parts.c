@@ -9,6 +9,9 @@
 #include "figure/horizon.h"
 #include "work/filter.h"
 
+/* The share of a hazard's risk from which an outcome has a mark in the grid. */
+static const double LEAST_SHARE_OF_RISK = 0.1;
+
 const char *object_name(const struct object *o)
 {
     static const char *const keys[] = {"name", "title", "question"};
@@ -59,6 +62,47 @@ static const char *entry_words(struct job *j, const struct store_entry *x)
                         utc_write(utc, x->utc), x->author);
 }
 
+/* "2 hazards", "1 hazard"; nothing for none. */
+static void add_number(struct text *t, size_t n, const char *what)
+{
+    if (n)
+        text_printf(t, "%s%zu %s%s", t->n ? ", " : "", n, what, n > 1 ? "s" : "");
+}
+
+static size_t count_left_out(const struct job *j, enum kind kind)
+{
+    size_t n = 0;
+    const struct objects *all = &j->model->of[kind];
+    for (size_t i = 0; i < j->not_computed.n; i++)
+        for (size_t k = 0; k < all->n; k++)
+            n += text_equal(all->at[k]->id, j->not_computed.at[i].id);
+    return n;
+}
+
+/* What the figures leave out: who signs them must know. */
+static const char *not_included(struct job *j)
+{
+    struct unused u = {0};
+    struct text t;
+    text_init(&t, j->arena);
+    figures_unused(j->arena, j->model, &u);
+    add_number(&t, count_left_out(j, KIND_HAZARD), "hazard");
+    add_number(&t, count_left_out(j, KIND_DECISION), "decision");
+    if (t.n)
+        text_add(&t, " without figures");
+    if (u.n)
+        text_printf(&t,
+                    "%sfields of %zu object%s that are stored, but not used (see the last chapter)",
+                    t.n ? "; " : "", u.n, u.n > 1 ? "s" : "");
+    return t.n ? text_str(&t) : "nothing";
+}
+
+void part_signatures(struct job *j)
+{
+    static const char *const roles[] = {"Prepared", "Checked", "Approved"};
+    report_signatures(j->report, "signatures", NULL, roles, sizeof roles / sizeof *roles);
+}
+
 void part_title_block(struct job *j, ohmen_error *e)
 {
     const struct register_settings *s = j->model->settings;
@@ -84,6 +128,7 @@ void part_title_block(struct job *j, ohmen_error *e)
                       date_write(date, horizon_start(s))));
     if (j->query.site)
         pair(j, b, "Only site", j->query.site);
+    pair(j, b, "Not included", not_included(j));
 }
 
 /* --- hazards --- */
@@ -99,47 +144,54 @@ static double risk_of(const struct job *j, const struct compiled *c)
 }
 
 struct ranked {
-    double risk;
+    double value;
     size_t index;
 };
 
-static int by_falling_risk(const void *p, const void *q)
+static int by_falling_value(const void *p, const void *q)
 {
     const struct ranked *a = p, *b = q;
-    if (a->risk != b->risk)
-        return a->risk > b->risk ? -1 : 1;
+    if (a->value != b->value)
+        return a->value > b->value ? -1 : 1;
     return (a->index > b->index) - (a->index < b->index);
 }
 
-/* Indices of hazards by falling risk; ties by id, since hazards come in that order. */
-static size_t *by_risk(struct job *j, const struct hazards *h)
+size_t *falling_order(struct arena *a, size_t n, const double *values)
 {
-    size_t *order = NEW_ARRAY(j->arena, h->n, size_t);
-    struct ranked *ranked = NEW_ARRAY(j->arena, h->n, struct ranked);
-    for (size_t i = 0; i < h->n; i++)
-        ranked[i] = (struct ranked){risk_of(j, h->at[i]), i};
-    if (h->n > 1)
-        qsort(ranked, h->n, sizeof *ranked, by_falling_risk);
-    for (size_t i = 0; i < h->n; i++)
+    size_t *order = NEW_ARRAY(a, n, size_t);
+    struct ranked *ranked = NEW_ARRAY(a, n, struct ranked);
+    for (size_t i = 0; i < n; i++)
+        ranked[i] = (struct ranked){values[i], i};
+    if (n > 1)
+        qsort(ranked, n, sizeof *ranked, by_falling_value);
+    for (size_t i = 0; i < n; i++)
         order[i] = ranked[i].index;
     return order;
 }
 
-const char *criteria_word(struct job *j, double risk)
+size_t *hazards_by_risk(struct job *j, const struct hazards *h)
 {
-    const struct criteria *c = j->model->settings->criteria;
-    if (!c || !c->money || !text_equal(scope_words[c->money->scope], "hazard"))
-        return "";
-    const struct quantity *low = c->money->acceptable_below, *high = c->money->intolerable_above;
-    if (high && risk > expr_constant(high->expr))
-        return "intolerable";
-    if (low && risk < expr_constant(low->expr))
-        return "acceptable";
-    return "tolerable";
+    double *risks = NEW_ARRAY(j->arena, h->n, double);
+    for (size_t i = 0; i < h->n; i++)
+        risks[i] = risk_of(j, h->at[i]);
+    return falling_order(j->arena, h->n, risks);
 }
 
-static void number_cell(struct job *j, struct row *row, figure_id id)
+figure_id hazard_effect(struct job *j, const struct compiled *hazard, enum property p,
+                        const char *of)
 {
+    const struct compiled *part = NULL;
+    figures_consequences(j->figures, hazard->variant, hazard->id, &part, NULL);
+    const struct consequence *x = part ? consequence_of(part, p, of) : NULL;
+    return x ? x->mean : FIGURE_NONE;
+}
+
+void figure_cell(struct job *j, struct row *row, figure_id id)
+{
+    if (id == FIGURE_NONE) {
+        row_empty(j->report, row);
+        return;
+    }
     row_number(j->report, row, figure_value(j->figures, id), figure_name(j->figures, j->arena, id));
 }
 
@@ -150,12 +202,12 @@ static struct row *hazard_row(struct job *j, struct block *b, size_t rank, const
     row_count(j->report, row, rank);
     row_text(j->report, row, c->id);
     row_text(j->report, row, object_name(c->object));
-    number_cell(j, row, x->frequency);
-    number_cell(j, row, x->damaging);
-    number_cell(j, row, x->damage);
-    number_cell(j, row, x->risk);
-    if (*criteria_word(j, 0))
-        row_text(j->report, row, criteria_word(j, risk_of(j, c)));
+    figure_cell(j, row, x->frequency);
+    figure_cell(j, row, x->damaging);
+    figure_cell(j, row, x->damage);
+    figure_cell(j, row, x->risk);
+    if (*criteria_word(j, SCOPE_HAZARD, 0))
+        row_text(j->report, row, criteria_word(j, SCOPE_HAZARD, risk_of(j, c)));
     return row;
 }
 
@@ -185,7 +237,7 @@ static struct filter_item hazard_item(struct job *j, const struct compiled *c, s
     v[HAZARD_RANK] = computed_number((double)(index + 1), NUMBER);
     for (size_t i = HAZARD_FREQUENCY; i <= HAZARD_RISK; i++)
         v[i] = computed_number(figure_value(j->figures, of[i]), hazard_columns[i].dim);
-    const char *word = criteria_word(j, v[HAZARD_RISK].value);
+    const char *word = criteria_word(j, SCOPE_HAZARD, v[HAZARD_RISK].value);
     v[HAZARD_CRITERION] = (struct filter_value){.given = *word != 0, .text = word};
     return (struct filter_item){.object = c->object, .computed = v, .index = index};
 }
@@ -202,7 +254,7 @@ static struct block *hazards_table(struct job *j, const char *title)
     block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 4;
     block_column(r, b, "damage", "Mean damage", currency, STYLE_MONEY)->keep = 4;
     block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
-    if (*criteria_word(j, 0))
+    if (*criteria_word(j, SCOPE_HAZARD, 0))
         block_column(r, b, "criterion", "Criterion", "", STYLE_PLAIN)->keep = 2;
     return b;
 }
@@ -235,7 +287,7 @@ void part_hazards_where(struct job *j, const struct hazards *h, struct filter *f
     bool by_another = f && filter_orders(f);
     struct block *b = hazards_table(j, by_another ? "Hazards" : "Hazards by risk");
     asked_columns(j, b, f);
-    size_t *order = by_risk(j, h);
+    size_t *order = hazards_by_risk(j, h);
     for (size_t i = 0; i < h->n; i++)
         *array_push(j->arena, &items) = hazard_item(j, h->at[order[i]], i);
     if (f)
@@ -253,37 +305,86 @@ void part_hazards(struct job *j, const struct hazards *h)
     part_hazards_where(j, h, NULL);
 }
 
-void part_criteria_lines(struct job *j, struct block *grid)
+static struct grid_mark *add_mark(struct job *j, struct block *b, const char *label,
+                                  const char *name, figure_id frequency, figure_id damage)
 {
-    const struct criteria *c = j->model->settings->criteria;
-    if (!c || !c->money || !text_equal(scope_words[c->money->scope], "hazard"))
-        return;
-    const struct quantity *low = c->money->acceptable_below, *high = c->money->intolerable_above;
-    double x;
-    if (low && (x = expr_constant(low->expr)) > 0)
-        grid_add_line(j->report, grid,
-                      arena_printf(j->arena, "acceptable below %s", money_rate(j, x)), x, "a");
-    if (high && (x = expr_constant(high->expr)) > 0)
-        grid_add_line(j->report, grid,
-                      arena_printf(j->arena, "intolerable above %s", money_rate(j, x)), x, "i");
+    struct grid_mark *m =
+        grid_add_mark(j->report, b, label, name, figure_value(j->figures, frequency),
+                      figure_value(j->figures, damage));
+    m->frequency_figure = figure_name(j->figures, j->arena, frequency);
+    m->damage_figure = figure_name(j->figures, j->arena, damage);
+    return m;
+}
+
+/* The outcomes of a hazard that do damage, by falling risk; *n of them. */
+static struct ranked *outcomes_by_risk(struct job *j, const struct hazard_exports *x, size_t *n)
+{
+    struct ranked *all = NEW_ARRAY(j->arena, x->n_outcomes, struct ranked);
+    *n = 0;
+    for (size_t k = 0; k < x->n_outcomes; k++) {
+        double risk = figure_value(j->figures, x->risk_of[k]);
+        if (risk > 0)
+            all[(*n)++] = (struct ranked){risk, k};
+    }
+    if (*n > 1)
+        qsort(all, *n, sizeof *all, by_falling_value);
+    return all;
+}
+
+/* "burnt: Switchboard burnt out" of a hazard's outcome k. */
+static const char *outcome_words(struct job *j, const struct compiled *c, size_t k)
+{
+    const struct hazard *h = c->object->data;
+    const char *name = ROW(struct outcome, h->outcomes, k)->name;
+    return name ? arena_printf(j->arena, "%s %s: %s", c->id, h->outcomes.keys[k], name)
+                : arena_printf(j->arena, "%s %s", c->id, h->outcomes.keys[k]);
+}
+
+/* Closer than this share two points of a grid are one. */
+static const double NEAR = 0.1;
+
+static bool is_near(const struct job *j, figure_id a, figure_id b)
+{
+    double x = figure_value(j->figures, a), y = figure_value(j->figures, b);
+    return fabs(x - y) <= NEAR * y;
+}
+
+/* Hollow marks, "3a", for the outcomes that hold enough of the risk of mark `whole`: its
+ * mean damage hides that they are rare and ruinous. What lies where the hazard lies is the hazard
+ * itself. */
+static void add_outcomes(struct job *j, struct block *b, const struct compiled *c, int whole)
+{
+    const struct hazard_exports *x = exports(c);
+    size_t n;
+    struct ranked *by = outcomes_by_risk(j, x, &n);
+    const char *rank = b->grid->marks.at[whole].label;
+    double least = LEAST_SHARE_OF_RISK * risk_of(j, c);
+    for (size_t i = 0; n > 1 && i < n && by[i].value >= least; i++) {
+        size_t k = by[i].index;
+        if (is_near(j, x->frequency_of[k], x->damaging) && is_near(j, x->damage_of[k], x->damage))
+            continue;
+        const char *label = arena_printf(j->arena, "%s%c", rank, (char)('a' + i));
+        add_mark(j, b, label, outcome_words(j, c, k), x->frequency_of[k], x->damage_of[k])
+            ->part_of = whole;
+    }
 }
 
 void part_hazard_grid(struct job *j, const struct hazards *h)
 {
-    struct report *r = j->report;
-    struct block *b =
-        report_grid(r, "grid", "Hazards by frequency and damage", j->model->settings->currency);
+    struct block *b = report_grid(j->report, "grid", "Hazards by frequency and damage",
+                                  j->model->settings->currency);
+    b->grid->wholes = "a hazard";
+    b->grid->parts = "an outcome with at least 10 % of its hazard's risk";
     part_criteria_lines(j, b);
-    size_t *order = by_risk(j, h);
+    size_t *order = hazards_by_risk(j, h);
     for (size_t i = 0; i < h->n; i++) {
         const struct compiled *c = h->at[order[i]];
         const struct hazard_exports *x = exports(c);
-        struct grid_mark *m = grid_add_mark(
-            r, b, arena_printf(j->arena, "%zu", i + 1),
-            arena_printf(j->arena, "%s %s", c->id, object_name(c->object)),
-            figure_value(j->figures, x->damaging), figure_value(j->figures, x->damage));
-        m->frequency_figure = figure_name(j->figures, j->arena, x->damaging);
-        m->damage_figure = figure_name(j->figures, j->arena, x->damage);
+        int whole = (int)b->grid->marks.n;
+        add_mark(j, b, arena_printf(j->arena, "%zu", i + 1),
+                 arena_printf(j->arena, "%s %s", c->id, object_name(c->object)), x->damaging,
+                 x->damage);
+        add_outcomes(j, b, c, whole);
     }
 }
 

@@ -6,8 +6,10 @@
 struct whole {
     struct hazards hazards;
     struct protection protection;
+    struct perspectives perspectives;
+    struct supply_part supply;
+    struct people_part people;
     ARRAY(struct weighing *) decisions;
-    ARRAY(const char *) trees; /* decisions that are trees */
 };
 
 static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_error *e)
@@ -17,7 +19,8 @@ static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_erro
         const struct decision *d = all->at[i]->data;
         struct weighing *x;
         if (d->choose.n) {
-            *array_push(j->arena, &w->trees) = all->at[i]->id;
+            *array_push(j->arena, &j->not_computed) = (struct not_computed){
+                all->at[i]->id, "a decision tree, which this version stores but does not evaluate"};
             continue;
         }
         ohmen_error why = OHMEN_ERROR_INIT;
@@ -49,14 +52,16 @@ static void total_note(struct job *j, const struct whole *w)
         }
     }
     const char *together = money_text(j->arena, sum, unit);
+    const char *judged = j->query.site ? "" : criteria_sentence(j, SCOPE_REGISTER, sum);
     if (w->hazards.n == 1)
-        report_note(j->report, "summary", "One hazard, %s, carries a risk of %s.", worst, together);
+        report_note(j->report, "summary", "One hazard, %s, carries a risk of %s.%s", worst,
+                    together, judged);
     else if (w->hazards.n > 1)
         report_note(
             j->report, "summary",
-            "%zu hazards carry a risk of %s together. The largest is %s with %s, %.0f %% of it.",
+            "%zu hazards carry a risk of %s together. The largest is %s with %s, %.0f %% of it.%s",
             w->hazards.n, together, worst, money_text(j->arena, most, unit),
-            sum > 0 ? 100 * most / sum : 0);
+            sum > 0 ? 100 * most / sum : 0, judged);
 }
 
 static void part_summary(struct job *j, struct whole *w)
@@ -157,33 +162,66 @@ static void part_decisions(struct job *j, struct whole *w)
         part_weighing(j, x);
         part_weighing_grid(j, x);
     }
-    for (size_t i = 0; i < w->trees.n; i++)
-        report_note(j->report, arena_printf(j->arena, "tree-%s", w->trees.at[i]),
-                    "%s is a decision tree, which this version stores but does not evaluate.",
-                    w->trees.at[i]);
+}
+
+static ohmen_status compile_chapters(struct job *j, struct whole *w, ohmen_error *e)
+{
+    const struct hazards *h = &w->hazards;
+    ohmen_status status = perspectives_compile(j, h, &w->perspectives, e);
+    if (status == OHMEN_OK)
+        status = supply_compile(j, h, &w->supply, e);
+    if (status == OHMEN_OK && !j->query.site)
+        status = people_compile(j, h, &w->people, e);
+    if (status == OHMEN_OK)
+        status = protection_compile(j, h, &w->protection, e);
+    return status == OHMEN_OK ? compile_decisions(j, w, e) : status;
+}
+
+static ohmen_status compute_report(struct job *j, struct whole *w, ohmen_error *e)
+{
+    ohmen_status status = job_load_figures(j, e);
+    if (status == OHMEN_OK)
+        status = job_compile_hazards(j, &w->hazards, e);
+    if (status == OHMEN_OK)
+        status = compile_chapters(j, w, e);
+    return status == OHMEN_OK ? figures_evaluate(j->figures, e) : status;
+}
+
+static void chapter_hazards(struct job *j, const struct whole *w)
+{
+    report_heading(j->report, 2, "Hazards");
+    part_hazards(j, &w->hazards);
+    part_hazard_grid(j, &w->hazards);
+    part_perspectives(j, &w->perspectives);
+    part_sites(j, &w->supply);
+}
+
+/* Supply and people, where the register has such data. */
+static void chapters_of_effects(struct job *j, const struct whole *w)
+{
+    if (w->supply.any) {
+        report_heading(j->report, 2, "Supply");
+        part_supply(j, &w->supply);
+    }
+    if (w->people.any) {
+        report_heading(j->report, 2, "People");
+        part_people(j, &w->people);
+    }
 }
 
 static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
 {
     struct whole w = {0};
     (void)ctx;
-    ohmen_status status = job_load_figures(j, e);
-    if (status == OHMEN_OK)
-        status = job_compile_hazards(j, &w.hazards, e);
-    if (status == OHMEN_OK)
-        status = protection_compile(j, &w.hazards, &w.protection, e);
-    if (status == OHMEN_OK)
-        status = compile_decisions(j, &w, e);
-    if (status == OHMEN_OK)
-        status = figures_evaluate(j->figures, e);
+    ohmen_status status = compute_report(j, &w, e);
     if (status != OHMEN_OK)
         return status;
     part_title_block(j, e);
+    part_signatures(j);
     part_summary(j, &w);
     part_not_computed(j);
-    report_heading(j->report, 2, "Hazards");
-    part_hazards(j, &w.hazards);
-    part_hazard_grid(j, &w.hazards);
+    chapter_hazards(j, &w);
+    chapters_of_effects(j, &w);
     report_heading(j->report, 2, "What protection hinges on");
     part_protection(j, &w.protection, 3);
     part_decisions(j, &w);

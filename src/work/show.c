@@ -282,10 +282,13 @@ static ohmen_status compute(struct job *j, const struct object *o, const struct 
 {
     ohmen_error error = OHMEN_ERROR_INIT;
     ohmen_status status = OHMEN_OK;
+    const struct compiled *effects;
     *c = NULL;
     *why = NULL;
     if (has_figures(o))
         status = figures_compile(j->figures, j->base, o->id, c, &error);
+    if (status == OHMEN_OK && o->kind == KIND_HAZARD)
+        status = figures_consequences(j->figures, j->base, o->id, &effects, &error);
     if (status == OHMEN_OK)
         status = figures_evaluate(j->figures, &error);
     if (status == OHMEN_OK)

@@ -34,6 +34,9 @@ void parts_below(struct arena *a, const struct model *m, const char *id, struct 
 struct hazard_list ARRAY_BODY(const struct object *);
 void hazards_that_use(struct job *j, const char *id, struct hazard_list *out);
 
+/* What a hazard does beside its risk (show_effects.c); its effects have been evaluated. */
+void part_effects(struct job *j, const struct compiled *c);
+
 /* --- what it hinges on (show_hinges.c) --- */
 
 /* "VH-51A", "VH-51A, VH-51B together", "VH-BAT put out of action". */

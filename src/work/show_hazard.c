@@ -527,6 +527,7 @@ static void part_figures(struct job *j, const struct compiled *c, const struct n
     part_states(j, c);
     ends_table(j, exports_of(u));
     report_note(j->report, "perspective", "Damage counted: %s.", perspective_words(j));
+    part_effects(j, c);
     part_weak_points(j, c, doc);
     part_importance(j, c);
     part_risk_years(j, exports_of(c));

@@ -99,7 +99,7 @@ static void turn_table(struct job *j, const struct turns *t)
     block_column(r, b, "unit", "Unit", "", STYLE_PLAIN);
     block_column(r, b, "period", "That is", "", STYLE_PLAIN)->keep = 1;
     block_column(r, b, "factor", "Factor", "", STYLE_RATIO)->keep = 3;
-    block_column(r, b, "within", "Within 5 to 95 %", "", STYLE_PLAIN)->keep = 4;
+    block_column(r, b, "within", "5 to 95 %", "", STYLE_PLAIN)->keep = 4;
     block_column(r, b, "then", "Then better", "", STYLE_PLAIN);
     for (size_t i = 0; i < t->list.n && i < MOST_ROWS; i++)
         turn_row(j, b, &t->list.at[i]);

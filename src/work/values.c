@@ -83,12 +83,50 @@ static struct stated last_stated(struct job *j, const char *text, struct dim d)
     return last;
 }
 
+/* Units in which the trade counts: hours of customers, minutes of one, and MWh. */
+static const struct customary {
+    enum property property;
+    const char *unit;
+    double per_base; /* of these in one of the base unit */
+} customary[] = {
+    {PROPERTY_CUSTOMER_TIME, "h", 8760},
+    {PROPERTY_AVOIDS_TIME, "h", 8760},
+    {PROPERTY_PRESENT_TIME, "h", 8760},
+    {PROPERTY_SAIDI, "min", 525600},
+    {PROPERTY_CAIDI, "min", 525600},
+    {PROPERTY_NOT_SUPPLIED, "MWh", 8.76}, /* of kWa */
+};
+
+/* How a property is shown whatever its size; NULL: by its size. */
+static const struct customary *customary_of(enum property p)
+{
+    for (size_t i = 0; i < sizeof customary / sizeof *customary; i++)
+        if (customary[i].property == p)
+            return &customary[i];
+    return NULL;
+}
+
+enum number_style figure_style(struct job *j, figure_id id)
+{
+    enum property p = figure_at(j->figures, id)->property;
+    return p == PROPERTY_ASAI || customary_of(p) ? STYLE_GROUPED : STYLE_PLAIN;
+}
+
 const char *figure_display(struct job *j, figure_id id, double *shown)
 {
     const struct figure *g = figure_at(j->figures, id);
     struct dim d = figure_dim(j->figures, id);
     double value = figure_value(j->figures, id);
     struct stated s = {0};
+    const struct customary *c = customary_of(g->property);
+    if (c) {
+        *shown = value * c->per_base;
+        return c->unit;
+    }
+    if (g->property == PROPERTY_PER_HOUR) {
+        *shown = value / HOURS_PER_YEAR;
+        return arena_printf(j->arena, "%s/h", j->model->settings->currency);
+    }
     if (g->text)
         s = last_stated(j, g->text, d);
     if (!s.unit) {

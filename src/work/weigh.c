@@ -5,14 +5,6 @@
 
 #include "work/work.h"
 
-static void money_cell(struct job *j, struct row *row, figure_id id)
-{
-    if (id == FIGURE_NONE)
-        row_empty(j->report, row);
-    else
-        row_number(j->report, row, figure_value(j->figures, id),
-                   figure_name(j->figures, j->arena, id));
-}
 
 /* "do nothing" for people, the options' ids otherwise. */
 static const char *alternative_words(const struct alternative *x)
@@ -50,11 +42,11 @@ static void alternative_row(struct job *j, struct block *b, const struct alterna
     struct row *row = block_row(j->report, b);
     row_count(j->report, row, x->rank);
     row_text(j->report, row, alternative_words(x));
-    money_cell(j, row, x->present_damage);
-    money_cell(j, row, x->present_cost);
-    money_cell(j, row, x->total);
-    money_cell(j, row, x->net);
-    money_cell(j, row, x->ratio);
+    figure_cell(j, row, x->present_damage);
+    figure_cell(j, row, x->present_cost);
+    figure_cell(j, row, x->total);
+    figure_cell(j, row, x->net);
+    figure_cell(j, row, x->ratio);
 }
 
 void part_alternatives(struct job *j, const struct weighing *w)
@@ -95,7 +87,7 @@ static void option_row(struct job *j, struct block *b, const struct object *o)
         const char *name = arena_printf(j->arena, "%s.%s", o->id, parts[i]);
         bool given = i ? p->running != NULL : p->invest != NULL;
         if (given && weigh_find(j->figures, name, &id, NULL) == OHMEN_OK)
-            money_cell(j, row, id);
+            figure_cell(j, row, id);
         else
             row_empty(r, row);
     }
@@ -144,9 +136,9 @@ static void hazard_row(struct job *j, struct block *b, const struct weighed_haza
             row_empty(r, row);
     } else {
         const struct hazard_exports *e = c->exports;
-        money_cell(j, row, e->damaging);
-        money_cell(j, row, e->damage);
-        money_cell(j, row, e->risk);
+        figure_cell(j, row, e->damaging);
+        figure_cell(j, row, e->damage);
+        figure_cell(j, row, e->risk);
     }
     if (focus)
         row_text(r, row, h->in_focus ? "yes" : "no");

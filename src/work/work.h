@@ -9,6 +9,7 @@
 
 #include "decide/lean.h"
 #include "decide/turn.h"
+#include "figure/supply.h"
 #include "ohmen/ohmen.h"
 #include "report/block.h"
 #include "store/store.h"
@@ -90,8 +91,6 @@ ohmen_status job_check_site(struct job *j, ohmen_error *e);
 /* Is the site (NULL: none) the one that the query asks for, or inside it? Always, where it
  * asks for none. */
 bool job_at_site(const struct job *j, const char *site);
-/* Is the site (NULL: none) this one, or inside it? */
-bool site_is_in(const struct model *m, const char *site, const char *whole);
 /* The same of an object: a site by itself, others by their field; always, where its kind has no
  * such field. */
 bool job_has_at_site(const struct job *j, const struct object *o);
@@ -115,7 +114,9 @@ const char *unit_per_year(struct job *j);        /* "EUR/a" */
 /* Whose damage counts: "every category", "what society bears". */
 const char *perspective_words(struct job *j);
 
+/* Behind the figures, for it says what is not among them. */
 void part_title_block(struct job *j, ohmen_error *e);
+void part_signatures(struct job *j);
 void part_hazards(struct job *j, const struct hazards *h);
 void part_hazard_grid(struct job *j, const struct hazards *h);
 /* What is left out because it cannot be evaluated, and why; nothing when all could. */
@@ -161,8 +162,6 @@ const char *people_sentence(struct job *j, const struct weighing *w);
  * is at least one group. */
 double worst_individual_risk(const struct job *j, const struct weighing *w,
                              const struct alternative *x, size_t *group);
-/* Its place among the criteria for people: "acceptable", "tolerable", "intolerable", or "". */
-const char *people_word(struct job *j, double risk);
 /* A number in a sentence: three significant digits. */
 const char *plain_text(struct job *j, double x);
 void part_weighing_grid(struct job *j, struct weighing *w);
@@ -181,6 +180,11 @@ void part_turn_head(struct job *j, const struct turn *t);
 void part_turn_method(struct job *j, const struct turn *t);
 struct consumed turn_consumed(struct job *j, const struct turn *t);
 
+/* The best alternative year by year; nothing where that is to do nothing. The weighing is ranked. */
+void part_flow(struct job *j, struct weighing *w);
+/* When an alternative that is not doing nothing has paid for itself. */
+const char *payback_sentence(struct job *j, struct weighing *w, const struct alternative *x);
+
 /* What a decision rests on: inputs by how much they move it, and their sources. It is ranked. */
 void part_rests_on(struct job *j, const struct weighing *w);
 /* The derivation of one such movement. */
@@ -190,18 +194,15 @@ struct consumed lean_consumed(struct job *j, const struct lean *x);
 /* What the figure belongs to, by its name; the register's own settings by what they are. */
 const char *figure_subject(const struct job *j, figure_id id);
 
-/* Criteria lines of the register for a grid; only those whose scope is a hazard. */
-void part_criteria_lines(struct job *j, struct block *grid);
-
-/* The place of a hazard's risk among the criteria: "acceptable", "tolerable",
- * "intolerable", or "" without criteria. */
-const char *criteria_word(struct job *j, double risk);
-
 /* A value in a unit that people read: s, min, h or a for times, kWh for energy; otherwise
  * base units. Returns the unit's name. */
 const char *display_unit(struct job *j, struct dim d, double value, double *shown);
 
-/* The same for a figure: a stated quantity is shown in the unit that its author used. */
+/* How its value is printed in that unit. */
+enum number_style figure_style(struct job *j, figure_id id);
+
+/* The same for a figure: a stated quantity is shown in the unit that its author used, customer
+ * time in hours. */
 const char *figure_display(struct job *j, figure_id id, double *shown);
 
 /* A value of a figure, which need not be its own, in words with that unit. */
@@ -210,6 +211,64 @@ const char *figure_words(struct job *j, figure_id id, double value);
 /* Where a figure comes from: its source, that of the figure that it merely repeats, "none" for
  * a leaf without one, "" for a formula. */
 const char *figure_source(struct job *j, figure_id id);
+
+/* Indices of values by falling value; ties in their order. */
+size_t *falling_order(struct arena *a, size_t n, const double *values);
+/* Hazards by falling risk; ties by id. */
+size_t *hazards_by_risk(struct job *j, const struct hazards *h);
+/* A cell with a figure in base units; empty for FIGURE_NONE. */
+void figure_cell(struct job *j, struct row *row, figure_id id);
+/* An effect of a hazard over the horizon, whose effects have been compiled; FIGURE_NONE. */
+figure_id hazard_effect(struct job *j, const struct compiled *hazard, enum property p,
+                        const char *of);
+
+/* --- criteria (criteria.c) --- */
+
+/* Criteria lines of the register for a grid; only those whose scope is a hazard. */
+void part_criteria_lines(struct job *j, struct block *grid);
+/* The place of a risk of a hazard, of a site or of the register among the criteria:
+ * "acceptable", "tolerable", "intolerable"; "" without criteria of this scope. */
+const char *criteria_word(const struct job *j, enum scope scope, double risk);
+/* " By the register's criteria that is tolerable (acceptable below ...).", or "". */
+const char *criteria_sentence(struct job *j, enum scope scope, double risk);
+/* The same for an individual risk, and the limits in words; "" without limits. */
+const char *people_word(const struct job *j, double individual_risk);
+const char *people_limit_words(struct job *j);
+
+/* --- perspectives.c, supply.c, people.c: compile, figures_evaluate, then the parts --- */
+
+struct perspectives {
+    const struct hazards *hazards;
+    struct accounts sums; /* of the register, or of the site that is asked for */
+};
+ohmen_status perspectives_compile(struct job *j, const struct hazards *h, struct perspectives *p,
+                                  ohmen_error *e);
+/* Risk by perspective and by category of damage, as tables. */
+void part_perspectives(struct job *j, const struct perspectives *p);
+
+struct site_row {
+    const struct object *site;
+    struct site_sums sums;
+};
+struct supply_part {
+    const struct hazards *hazards;
+    bool any;           /* does some hazard interrupt somebody? */
+    struct supply sums; /* of the register, or of the site that is asked for */
+    ARRAY(struct site_row) sites; /* that have hazards */
+};
+ohmen_status supply_compile(struct job *j, const struct hazards *h, struct supply_part *s,
+                            ohmen_error *e);
+void part_supply(struct job *j, const struct supply_part *s);
+void part_sites(struct job *j, const struct supply_part *s);
+
+struct people_part {
+    const struct hazards *hazards; /* all of the register */
+    bool any;                      /* does some hazard harm somebody? */
+    struct harm_to *groups;        /* as the groups of the model */
+};
+ohmen_status people_compile(struct job *j, const struct hazards *h, struct people_part *p,
+                            ohmen_error *e);
+void part_people(struct job *j, const struct people_part *p);
 
 /* --- what objects say (nodes.c) --- */
 

@@ -6,15 +6,6 @@
 
 #include "work/work.h"
 
-static void figure_cell(struct job *j, struct row *row, figure_id id)
-{
-    if (id == FIGURE_NONE)
-        row_empty(j->report, row);
-    else
-        row_number(j->report, row, figure_value(j->figures, id),
-                   figure_name(j->figures, j->arena, id));
-}
-
 static double value_of(const struct job *j, figure_id id)
 {
     return id == FIGURE_NONE ? 0 : figure_value(j->figures, id);
@@ -125,7 +116,8 @@ static const double ROUNDING = 1e-9;
 static void together_row(struct job *j, struct block *b, const struct alternative *x)
 {
     struct row *row = block_row(j->report, b);
-    double together = value_of(j, x->together), size = fabs(value_of(j, x->present_damage));
+    double together = value_of(j, x->together);
+    double size = fabs(value_of(j, x->present_damage)) + fabs(value_of(j, x->benefit));
     if (fabs(together) <= ROUNDING * size)
         together = 0;
     row_text(j->report, row, x->name);
@@ -293,18 +285,6 @@ void part_customers_and_people(struct job *j, const struct weighing *w)
         customers_table(j, w);
     if (w->groups.n)
         people_table(j, w);
-}
-
-const char *people_word(struct job *j, double risk)
-{
-    const struct people_criteria *p = people_criteria(j);
-    if (!p)
-        return "";
-    if (p->intolerable_above && risk > expr_constant(p->intolerable_above->expr))
-        return "intolerable";
-    if (p->acceptable_below && risk < expr_constant(p->acceptable_below->expr))
-        return "acceptable";
-    return "tolerable";
 }
 
 const char *plain_text(struct job *j, double x)

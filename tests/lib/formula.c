@@ -99,7 +99,8 @@ bool formula_number(struct reader *r, long double *out)
 /* ".", "@", "+" and "=" belong to a name where they touch what stands on both sides. */
 static bool joins(const char *p)
 {
-    return (*p == '.' || *p == '@' || *p == '+' || *p == '=') && (in_name(p[1]) || p[1] == '[');
+    return (*p == '.' || *p == '@' || *p == '+' || *p == '=' || *p == ':') &&
+           (in_name(p[1]) || p[1] == '[');
 }
 
 /* Bytes of a made-up change, "[...]" behind @ or +, which may hold anything; else 0. */

@@ -183,6 +183,33 @@ static const char *random_frequency(struct generator *g, unsigned number)
                : arena_printf(g->arena, "%s * (%s)", plain, random_expression(g, PROBABILITY, 2));
 }
 
+/* Does the site, or one above it, state customers or load? */
+static bool is_supplied(const struct generator *g, const struct node *site)
+{
+    while (site) {
+        const struct node *m = node_get(node_get(g->root, "sites"), site->text);
+        if (node_get(m, "customers") || node_get(m, "load"))
+            return true;
+        site = node_get(m, "in");
+    }
+    return false;
+}
+
+/* Interruptions that leave it to the site say it themselves where no site does. */
+static void name_interrupted(struct generator *g, const struct node *hazard)
+{
+    const struct node *outcomes = node_get(hazard, "outcomes");
+    for (size_t i = 0; i < outcomes->n; i++) {
+        const struct node *rows = node_get(outcomes->pairs[i].value, "interruptions");
+        for (size_t k = 0; rows && k < rows->n; k++) {
+            struct node *row = rows->pairs[k].value;
+            if (!node_get(row, "customers") && !node_get(row, "load") &&
+                !is_supplied(g, node_get(hazard, "site")))
+                put_text(g, row, "customers", "1730");
+        }
+    }
+}
+
 static struct node *hazard(struct generator *g, unsigned number)
 {
     static const char *const skip[] = {"frequency", "response", "outcomes", NULL};
@@ -194,6 +221,7 @@ static struct node *hazard(struct generator *g, unsigned number)
     put_node(g, m, "response", response(g, b));
     put_node(g, m, "outcomes", outcomes);
     fill_fields(g, m, kinds[KIND_HAZARD].table, skip);
+    name_interrupted(g, m);
     return m;
 }
 

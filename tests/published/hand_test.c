@@ -5,10 +5,21 @@
 #include <stdio.h>
 #include <string.h>
 
+#include "decide/turn.h"
 #include "loaded.h"
 #include "rows.h"
 
 static const char *data_file, *documents;
+
+/* At which value of an input the decision turns is no figure of the graph. */
+static double turning(struct loaded *l, const char *name)
+{
+    struct turn t;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    ohmen_status status = turn_find(l->figures, name, &t, &e);
+    ck_assert_msg(status == OHMEN_OK, "%s", e.text);
+    return t.at;
+}
 
 static double figure(char *inputs)
 {
@@ -17,14 +28,14 @@ static double figure(char *inputs)
     struct arena *arena = arena_new(NULL);
     struct loaded l;
     loaded_folder(&l, arena, documents, perspective);
-    double value = loaded_value(&l, name);
+    double value = turn_is_named(name) ? turning(&l, name) : loaded_value(&l, name);
     arena_free(arena);
     return value;
 }
 
 START_TEST(hand_calculations)
 {
-    ck_assert_int_eq(rows_check(data_file, figure), 27);
+    ck_assert_int_eq(rows_check(data_file, figure), 30);
 }
 END_TEST
 

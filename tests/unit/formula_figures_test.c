@@ -131,13 +131,26 @@ static struct asked *ask_of(struct figures *f, struct arena *a, figure_id id)
     return x;
 }
 
-/* What rounding may take from the difference of present values that are nearly alike: that of the
+static bool is_difference(enum property p)
+{
+    static const enum property all[] = {PROPERTY_BENEFIT,           PROPERTY_NET,
+                                        PROPERTY_TOGETHER,          PROPERTY_AVOIDS,
+                                        PROPERTY_AVOIDED,           PROPERTY_CUMULATED,
+                                        PROPERTY_AVOIDS_TIME,       PROPERTY_PRESENT_TIME,
+                                        PROPERTY_AVOIDS_FATALITIES, PROPERTY_PRESENT_FATALITIES};
+    for (size_t i = 0; i < sizeof all / sizeof *all; i++)
+        if (p == all[i])
+            return true;
+    return false;
+}
+
+/* What rounding may take from the difference of values that are nearly alike: that of the
  * largest of them. */
 static long double lost(struct figures *f, struct arena *a, figure_id id)
 {
     enum property p = figure_at(f, id)->property;
     long double largest = 0;
-    if (p != PROPERTY_BENEFIT && p != PROPERTY_NET)
+    if (!is_difference(p))
         return 1e-300L;
     const struct asked *x = ask_of(f, a, id);
     for (size_t i = 0; i < x->inputs.n; i++)

@@ -240,6 +240,29 @@ START_TEST(own_inputs_beside_shared_ones)
 }
 END_TEST
 
+/* The values of the evaluation are those at the means again behind the integration, that of a
+ * course with an input of its own and a shared one among them. */
+START_TEST(values_are_put_back)
+{
+    struct dist d[] = {atoms_of(0, 0.1, 0.3, 0.9), atoms_of(1, 0.02, 0.1, 1.3),
+                       atoms_of(2, 0.05, 0.2, 2.385), atoms_of(3, 0.1, 0.4, 0.9),
+                       atoms_of(4, 0.3, 1, 4)};
+    struct setting s = {&w, {FREE, FREE, FREE, FREE, FREE}, d};
+    for (uint32_t i = 0; i < 5; i++)
+        mean_world_set(&w, i, d[i]);
+    node_id root = own_and_shared(&s);
+    mean_of(&w, root);
+    struct eval *anew = eval_new(arena, w.g);
+    ohmen_error e = OHMEN_ERROR_INIT;
+    ck_assert_int_eq(eval_point(anew, NULL, &e), OHMEN_OK);
+    for (node_id n = 0; n < graph_size(w.g); n++)
+        if (graph_at(w.g, n)->op != OP_DIAGRAM)
+            ck_assert_msg(eval_value(w.v, n) == eval_value(anew, n), "%s: %.17g, %.17g",
+                          graph_op_info(graph_at(w.g, n)->op)->name, eval_value(w.v, n),
+                          eval_value(anew, n));
+}
+END_TEST
+
 /* Of three inputs of one variable, one counts among the shared. */
 static node_id three_own(const struct setting *s)
 {
@@ -431,6 +454,7 @@ Suite *mean_blend_suite(void)
     tcase_add_test(t, own_rates_alone);
     tcase_add_test(t, common_cause_of_two);
     tcase_add_test(t, own_inputs_beside_shared_ones);
+    tcase_add_test(t, values_are_put_back);
     tcase_add_test(t, three_inputs_of_one_variable);
     tcase_add_test(t, without_windows);
     tcase_add_test(t, sampled_and_own);

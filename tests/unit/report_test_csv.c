@@ -91,12 +91,14 @@ START_TEST(grid_marks)
     b = report_grid(&r, "g", "Grid", "EUR");
     grid_add_mark(&r, b, "1", "Fault, today", 2.385e-3, 1.25e6)->arrow_from = -1;
     grid_add_mark(&r, b, "1a", "=Fault", 0, 40)->arrow_from = 0;
+    grid_add_mark(&r, b, "1b", "half", 1e-3, 20)->part_of = 0;
     report_grid(&r, "empty", "No marks", "EUR");
     report_write_csv(&t, &r);
     ck_assert_str_eq(text_str(&t), "x\r\n1\r\n\r\n"
-                                   "mark,name,frequency-1/a,damage-EUR,from\r\n"
-                                   "1,\"Fault, today\",0.002385,1250000,\r\n"
-                                   "1a,'=Fault,0,40,1\r\n");
+                                   "mark,name,frequency-1/a,damage-EUR,from,part-of\r\n"
+                                   "1,\"Fault, today\",0.002385,1250000,,\r\n"
+                                   "1a,'=Fault,0,40,1,\r\n"
+                                   "1b,half,0.001,20,,1\r\n");
     arena_free(a);
 }
 END_TEST

@@ -33,6 +33,8 @@ static void add_summary(struct report *r)
     pair_number(r, block_pair(r, b, "Frequency of a busbar fault"), 2.94e-3, "1/a",
                 STYLE_FREQUENCY, "H-BUS1.frequency");
     pair_number(r, block_pair(r, b, "Failure on demand"), 0.0123, "", STYLE_PERCENT, "p");
+    static const char *const roles[] = {"Prepared", "Checked", "Approved by the head of grids"};
+    report_signatures(r, "signatures", "Signatures", roles, 3);
     report_note(r, "intro", "The figures rest on faults and tests up to the date of data. A rate "
                             "that was learnt from two faults in nine years is not a number but a "
                             "distribution.\n\n  ! : above the criterion, café included\n");
@@ -78,6 +80,10 @@ static void add_picture(struct report *r)
     grid_add_mark(r, b, "d", "a and b together", 1e-4, 3e4)->arrow_from = 0;
     grid_add_mark(r, b, "ROUT", "Unwanted operation", 3.12, 900);
     grid_add_mark(r, b, "NONE", "Nothing ever", 0, 900);
+    grid_add_mark(r, b, "FEED1", "Feeder burnt", 2.13e-3, 1.2e6)->part_of = 3;
+    grid_add_mark(r, b, "FEED2", "Feeder tripped", 0.0192, 72000)->part_of = 3;
+    grid_add_mark(r, b, "TR2b", "Transformer lost", 1.98e-5, 2.31e7)->part_of = 4;
+    b->grid->parts = "an outcome of it";
     grid_add_line(r, b, "intolerable above 30 kEUR/a", 3e4, "#");
     grid_add_line(r, b, "acceptable", 300, "=");
 }

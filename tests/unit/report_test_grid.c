@@ -160,8 +160,8 @@ static void check_place(const struct picture *p, struct where w, int x, int y, i
 /* The paragraph below the picture that begins so, unwrapped; "" when there is none. */
 static const char *remark(const struct picture *p, const char *start)
 {
-    static const char *const starts[] = {"At one place", "Arrows:", "In the picture", "Beyond",
-                                         "Not in the picture, "};
+    static const char *const starts[] = {"At one place", "Arrows:",   "In the picture",
+                                         "Beyond",       "Not drawn", "Not in the picture, "};
     struct text t;
     text_init(&t, arena);
     for (size_t i = p->top + (size_t)p->rows; i < p->lines.n; i++) {
@@ -475,8 +475,6 @@ START_TEST(random_grids_are_right)
 }
 END_TEST
 
-/* ---- chosen grids ---- */
-
 static size_t count_in_picture(const struct picture *p, const char *s)
 {
     size_t n = 0;
@@ -485,6 +483,119 @@ static size_t count_in_picture(const struct picture *p, const char *s)
             n++;
     return n;
 }
+
+/* ---- parts of marks ---- */
+
+enum { WHOLES = 12, PARTS = 20 };
+
+static double between(struct random *r, double a, double b)
+{
+    return a == b ? a : random_log_uniform(r, fmin(a, b), fmax(a, b));
+}
+
+/* Parts lie between whole marks, so that they do not change the axes. */
+static void add_parts(struct random *r)
+{
+    struct grid *g = block->grid;
+    for (size_t i = 0; i < PARTS; i++) {
+        size_t j = random_index(r, WHOLES), k = random_index(r, WHOLES);
+        double f = between(r, g->marks.at[j].frequency, g->marks.at[k].frequency);
+        double d = between(r, g->marks.at[j].damage, g->marks.at[k].damage);
+        struct grid_mark *m =
+            grid_add_mark(&report, block, arena_printf(arena, "p%02zu", i), "a part", f, d);
+        m->part_of = (int)j;
+    }
+}
+
+/* A label stands in the picture: as a whole word. */
+static bool is_drawn(const struct picture *p, const char *label)
+{
+    for (size_t i = 0; i < (size_t)p->rows; i++)
+        if (strstr(p->lines.at[p->top + i] + p->axis, label))
+            return true;
+    return false;
+}
+
+/* Each cell of whole marks and their labels is as it was without the parts. */
+static void check_untouched(const struct picture *before, const struct picture *p)
+{
+    ck_assert(before->rows == p->rows && before->columns == p->columns);
+    for (int y = 0; y < p->rows; y++)
+        for (int x = 0; x < p->columns; x++) {
+            char c = cell_at(before, x, y);
+            if (is_mark(c) || c == 'M' || c == ',' || (c >= '0' && c <= '9'))
+                ck_assert_int_eq(cell_at(p, x, y), c);
+        }
+}
+
+/* Drawn where its logarithms are, or named by the remark; a label may be left out beside
+ * another part at the same place. The remark counts. */
+static size_t check_parts(const struct picture *p)
+{
+    const char *said = remark(p, "Not drawn, for want of room: ");
+    size_t gone = 0, drawn = 0;
+    for (size_t i = WHOLES; i < WHOLES + PARTS; i++) {
+        const struct grid_mark *m = &block->grid->marks.at[i];
+        struct where w = picture_where(p, m);
+        char c = cell_at(p, w.x, w.y);
+        bool named = strstr(said, m->label) != NULL;
+        if (named)
+            ck_assert(!is_drawn(p, m->label));
+        else
+            ck_assert_msg(c == 'o' || c == 'O', "%s: '%c'", m->label, c);
+        if (c == 'o' && !named)
+            ck_assert_msg(is_drawn(p, m->label), "%s has no label", m->label);
+        gone += named;
+        drawn += !named;
+    }
+    const char *count = arena_printf(arena, "%zu of the %d hollow marks", gone, PARTS);
+    ck_assert(gone ? strstr(said, count) != NULL : !*said);
+    return drawn;
+}
+
+START_TEST(parts_take_nothing)
+{
+    struct random r = random_seed(88000 + (uint64_t)_i);
+    size_t drawn = 0;
+    for (size_t i = 0; i < WHOLES; i++)
+        grid_add_mark(&report, block, arena_printf(arena, "M%02zu", i), "a name",
+                      random_log_uniform(&r, 1e-4, 1), random_log_uniform(&r, 1e3, 1e7));
+    const char *alone[] = {text_of(arena, &report, 60, true, false),
+                           text_of(arena, &report, 120, true, false)};
+    add_parts(&r);
+    for (unsigned k = 0; k < 2; k++) {
+        const char *s = text_of(arena, &report, 60 + 60 * k, true, false);
+        check_page(arena, s, 60 + 60 * k, true);
+        struct picture was = picture_read(arena, alone[k]), p = picture_read(arena, s);
+        check_untouched(&was, &p);
+        drawn += check_parts(&p);
+        check_key(&p);
+    }
+    ck_assert_uint_gt(drawn, 0);
+}
+END_TEST
+
+/* Two signs, told in words; a part upon its mark is not drawn; parts at one place. */
+START_TEST(parts_are_told_in_words)
+{
+    block->grid->wholes = "a hazard";
+    block->grid->parts = "an outcome";
+    grid_add_mark(&report, block, "1", "Fault", 1e-2, 1e5);
+    grid_add_mark(&report, block, "1a", "small", 9.9e-3, 1e5)->part_of = 0;
+    grid_add_mark(&report, block, "1b", "large", 1e-4, 1e7)->part_of = 0;
+    grid_add_mark(&report, block, "1c", "as large", 1e-4, 1e7)->part_of = 0;
+    const char *s = text_of(arena, &report, 80, true, false);
+    struct picture p = picture_read(arena, s);
+    ck_assert_uint_eq(count_in_picture(&p, "O1b,1c"), 1);
+    ck_assert_uint_eq(count_in_picture(&p, "1a"), 0);
+    ck_assert(strstr(s, "\n*    a hazard\nO    an outcome; O: several\n"));
+    ck_assert(strstr(s, "\nAt one place (O): 1b, 1c\n"));
+    ck_assert(strstr(s, "\nNot drawn, for want of room: 1 of the 3 hollow marks (1a)\n"));
+    ck_assert(strstr(s, "\n1a    small"));
+}
+END_TEST
+
+/* ---- chosen grids ---- */
 
 /* Marks of one cell have one sign and one label, cut where it would be too long (a
  * quarter of the picture); other marks keep their own. */
@@ -615,6 +726,8 @@ Suite *suite_report_grid(void)
     tcase_set_timeout(t, 120);
     tcase_add_checked_fixture(t, setup, teardown);
     tcase_add_loop_test(t, random_grids_are_right, 0, 35);
+    tcase_add_loop_test(t, parts_take_nothing, 0, 40);
+    tcase_add_test(t, parts_are_told_in_words);
     tcase_add_test(t, labels_are_joined);
     tcase_add_test(t, arrows_pass_other_marks);
     tcase_add_test(t, arrows_go_around_marks);

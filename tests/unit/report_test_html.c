@@ -36,8 +36,17 @@ static const char *page_of_report(void)
     return text_str(&t);
 }
 
+/* A heading without an id cannot be led to. */
+static void check_headings(const char *page)
+{
+    for (const char *at = page; (at = strstr(at, "<h")); at += 2)
+        if (at[2] >= '1' && at[2] <= '6')
+            ck_assert_msg(text_starts(at + 3, " id=\""), "a heading without an id: %.60s", at);
+}
+
 static void check_html(const char *s)
 {
+    check_headings(s);
     size_t bad = 0, n = strlen(s);
     const char *fault = html_check(s, n, &bad);
     size_t from = bad > 60 ? bad - 60 : 0;

@@ -123,9 +123,11 @@ START_TEST(other_blocks)
     b = report_grid(&r, "grid", NULL, "EUR");
     grid_add_mark(&r, b, "A", "first", 1e-3, 2e6)->frequency_figure = "A.frequency";
     grid_add_mark(&r, b, "B", "second", 1e-4, 2e5)->arrow_from = 0;
+    grid_add_mark(&r, b, "Aa", "half of it", 1e-4, 2e5)->part_of = 0;
     grid_add_line(&r, b, "limit", 1e5, "#");
     const char *s = json_of(a, &r);
-    static const struct { const char *path, *raw; } cells[] = {
+    static const struct { const char *path, *raw;
+    } cells[] = {
         {"blocks/0/values/0",
          "{\"name\": \"Risk\", \"value\": {\"value\": 2.385, \"unit\": \"EUR/a\", "
          "\"figure\": \"risk\"}}"},
@@ -135,6 +137,10 @@ START_TEST(other_blocks)
         {"blocks/2/marks/0/frequency",
          "{\"value\": 0.001, \"unit\": \"1/a\", \"figure\": \"A.frequency\"}"},
         {"blocks/2/marks/1/from", "\"A\""},
+        {"blocks/2/marks/2",
+         "{\"label\": \"Aa\", \"name\": \"half of it\", \"frequency\": {\"value\": 0.0001, "
+         "\"unit\": \"1/a\"}, \"damage\": {\"value\": 200000, \"unit\": \"EUR\"}, "
+         "\"part-of\": \"A\"}"},
         {"blocks/2/marks/1/damage", "{\"value\": 200000, \"unit\": \"EUR\"}"},
         {"blocks/2/lines/0/risk", "{\"value\": 100000, \"unit\": \"EUR/a\"}"}};
     for (size_t i = 0; i < sizeof cells / sizeof *cells; i++)

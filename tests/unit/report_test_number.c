@@ -22,10 +22,19 @@ static const struct { double x; enum number_style style; const char *text;
     {0.0123, STYLE_PLAIN, "0.0123"},
     {0.00123, STYLE_PLAIN, "1.23e-3"},
     {0.009994, STYLE_PLAIN, "9.99e-3"},
-    {0.009996, STYLE_PLAIN, "0.01"},
+    {0.009996, STYLE_PLAIN, "0.0100"},
+    {0.01, STYLE_PLAIN, "0.01"},
+    {1.398, STYLE_PLAIN, "1.40"}, /* rounded: all three digits; exact: no zeros at the end */
+    {1.4, STYLE_PLAIN, "1.4"},
+    {12.02, STYLE_PLAIN, "12.0"},
+    {12, STYLE_PLAIN, "12"},
+    {0.1 + 0.2, STYLE_PLAIN, "0.3"}, /* 0.30000000000000004: the error of a sum is no digit */
+    {0.30000000003, STYLE_PLAIN, "0.300"},
+    {119.97, STYLE_PLAIN, "120"},
+    {1.0004, STYLE_RATIO, "1.00"},
     {12345, STYLE_PLAIN, "12300"},
     {99949, STYLE_PLAIN, "99900"},
-    {99950, STYLE_PLAIN, "1e5"}, /* a tie: half to even gives 1000e2 */
+    {99950, STYLE_PLAIN, "1.00e5"}, /* a tie: half to even gives 1000e2 */
     {100000, STYLE_PLAIN, "1e5"},
     {123456789, STYLE_PLAIN, "1.23e8"},
     {1.125, STYLE_PLAIN, "1.12"}, /* exactly half: to even */
@@ -33,12 +42,15 @@ static const struct { double x; enum number_style style; const char *text;
     {2.385, STYLE_PLAIN, "2.38"}, /* the double is 2.38499999999999978684 */
     {1e-12, STYLE_PLAIN, "1e-12"},
     {5e-324, STYLE_PLAIN, "4.94e-324"},
-    {1.7976931348623157e308, STYLE_PLAIN, "1.8e308"},
+    {1.7976931348623157e308, STYLE_PLAIN, "1.80e308"},
     {-2.5e-7, STYLE_PLAIN, "-2.5e-7"},
     {INFINITY, STYLE_PLAIN, "infinite"},
     {-INFINITY, STYLE_PLAIN, "-infinite"},
     {NAN, STYLE_PLAIN, "undefined"},
     {1234567, STYLE_MONEY, "1230000"},
+    {0.00895, STYLE_MONEY, "0.00895"},
+    {0.000895, STYLE_MONEY, "8.95e-4"},
+    {-0.03102, STYLE_MONEY, "-0.0310"},
     {2.94e-3, STYLE_FREQUENCY, "2.94e-3"},
     {0.0213, STYLE_FREQUENCY, "2.13e-2"},
     {0.5, STYLE_FREQUENCY, "0.5"},
@@ -57,6 +69,22 @@ static const struct { double x; enum number_style style; const char *text;
     {0.00001, STYLE_PERCENT, "1e-3"},
     {-0.07, STYLE_PERCENT, "-7"},
     {1.234, STYLE_RATIO, "1.23"},
+    {123, STYLE_GROUPED, "123"},
+    {1234, STYLE_GROUPED, "1 230"},
+    {-98765, STYLE_GROUPED, "-98 800"},
+    {100000, STYLE_GROUPED, "100 000"},
+    {1234567, STYLE_GROUPED, "1 230 000"},
+    {999999999999, STYLE_GROUPED, "1e12"},
+    {123456789012, STYLE_GROUPED, "123 000 000 000"},
+    {1.39, STYLE_GROUPED, "1.39"},
+    {0.0123, STYLE_GROUPED, "0.0123"},
+    {1.23e-3, STYLE_GROUPED, "1.23e-3"},
+    {0.98765, STYLE_GROUPED, "0.988"},
+    {0.99123456, STYLE_GROUPED, "0.991235"},
+    {0.99979452, STYLE_GROUPED, "0.999795"},
+    {0.999997948, STYLE_GROUPED, "0.99999795"},
+    {1 - 1e-12, STYLE_GROUPED, "0.999999999999"},
+    {1, STYLE_GROUPED, "1"},
     {2027, STYLE_YEAR, "2027"},
     {2031.25, STYLE_YEAR, "2031.25"},
     {2031.2385, STYLE_YEAR, "2031.24"},
@@ -106,11 +134,19 @@ END_TEST
 
 START_TEST(amounts)
 {
-    static const struct { double x; const char *unit, *text; } cases[] = {
-        {12345, "EUR/a", "12.3 kEUR/a"}, {999.4, "EUR", "999 EUR"}, {999.7, "EUR", "1 kEUR"},
-        {0, "EUR", "0 EUR"},             {-4.2e6, "EUR", "-4.2 MEUR"}, {3e9, "CHF", "3 GCHF"},
-        {0.5, "EUR", "0.5 EUR"},         {2e12, "EUR", "2000 GEUR"}, {12345, "", "12300"},
-        {1e-5, "EUR/a", "1e-5 EUR/a"},   {1e15, "EUR", "1e6 GEUR"}};
+    static const struct { double x; const char *unit, *text;
+    } cases[] = {{12345, "EUR/a", "12.3 kEUR/a"},
+                 {999.4, "EUR", "999 EUR"},
+                 {999.7, "EUR", "1.00 kEUR"},
+                 {0, "EUR", "0 EUR"},
+                 {-4.2e6, "EUR", "-4.2 MEUR"},
+                 {3e9, "CHF", "3 GCHF"},
+                 {0.5, "EUR", "0.5 EUR"},
+                 {2e12, "EUR", "2000 GEUR"},
+                 {12345, "", "12300"},
+                 {1e-5, "EUR/a", "1e-5 EUR/a"},
+                 {1e15, "EUR", "1000000 GEUR"},
+                 {0.00895, "EUR", "0.00895 EUR"}};
     struct arena *a = arena_new(NULL);
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++)
         ck_assert_str_eq(money_text(a, cases[i].x, cases[i].unit), cases[i].text);
@@ -120,9 +156,10 @@ END_TEST
 
 START_TEST(prefix_of_a_column)
 {
-    static const struct { int largest, smallest, shift; } cases[] = {
-        {2, 0, 0}, {3, 3, 3}, {6, 4, 6}, {6, 2, 3}, {9, 6, 6}, {12, 9, 9}, {9, 2, 9},
-        {4, -5, 3}, {-400, 400, 0}, {7, 3, 3}, {6, -2, 6}};
+    static const struct { int largest, smallest, shift;
+    } cases[] = {{2, 0, 0},  {2, -9, 0}, {3, 3, 3}, {3, 2, 3},  {3, 1, 0},      {4, 0, 3},
+                 {4, -5, 3}, {6, 5, 6},  {6, 4, 3}, {6, 2, 3},  {6, -2, 3},     {7, 3, 6},
+                 {9, 6, 6},  {9, 2, 6},  {9, 8, 9}, {12, 9, 9}, {-400, 400, 0}, {14, 3, 9}};
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++)
         ck_assert_int_eq(money_shift(cases[i].largest, cases[i].smallest), cases[i].shift);
     ck_assert_str_eq(money_prefix(0), "");

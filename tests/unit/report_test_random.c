@@ -112,7 +112,10 @@ void add_some_grid(struct random *r, struct report *report)
     for (size_t i = 0; i < n; i++) {
         struct grid_mark *m = grid_add_mark(report, b, some_text(r), some_text(r),
                                             fabs(some_number(r)), fabs(some_number(r)));
-        m->arrow_from = (int)random_index(r, n + 1) - 1;
+        if (i && random_index(r, 4) == 0)
+            m->part_of = (int)random_index(r, i);
+        else
+            m->arrow_from = (int)random_index(r, n + 1) - 1;
     }
     for (size_t i = random_index(r, 3); i-- > 0;)
         grid_add_line(report, b, some_text(r), random_log_uniform(r, 1e-3, 1e6), some_text(r));

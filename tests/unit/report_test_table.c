@@ -83,6 +83,37 @@ START_TEST(columns_of_data_are_not_on_a_page)
 }
 END_TEST
 
+/* The amounts of one column have one prefix, that of the largest, and three digits each: by
+ * hand from the rule of STYLE_MONEY. The second column keeps a prefix with four digits before
+ * the point, for 3.2 would be 0.0032 in the next one. */
+START_TEST(amounts_of_one_column)
+{
+    static const struct {
+        double net, damage;
+    } rows[] = {{12412, 465000}, {1398, 29900},    {8.95, 1571000}, {0, 3204},
+                {-32000, 70100}, {-34740, 999600}, {0.4, 57000}};
+    struct block *b = report_table(&report, "t", NULL);
+    block_column(&report, b, "net", "Net", "EUR", STYLE_MONEY);
+    block_column(&report, b, "damage", "Damage", "EUR", STYLE_MONEY);
+    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
+        struct row *row = block_row(&report, b);
+        row_number(&report, row, rows[i].net, NULL);
+        row_number(&report, row, rows[i].damage, NULL);
+    }
+    static const char *const expected = "      Net   Damage\n"
+                                        "     kEUR     kEUR\n"
+                                        "------------------\n"
+                                        " 12.4       465\n"
+                                        "  1.40       29.9\n"
+                                        "  0.00895  1570\n"
+                                        "  0           3.20\n"
+                                        "-32          70.1\n"
+                                        "-34.7      1000\n"
+                                        "  4e-4       57\n";
+    ck_assert_str_eq(text_of(arena, &report, 80, true, false), expected);
+}
+END_TEST
+
 /* Where the decimal point of the last word of a line is, or would be. */
 static size_t point_of(const char *line)
 {
@@ -108,6 +139,57 @@ START_TEST(numbers_align_on_the_point)
     size_t first = lines.n - 30;
     for (size_t i = first; i < lines.n; i++)
         ck_assert_msg(point_of(lines.at[i]) == point_of(lines.at[first]), "%s", lines.at[i]);
+}
+END_TEST
+
+/* Names that are hard to measure, and the columns that they take, counted by hand: East Asian
+ * wide characters and emoji are two, marks that combine none, what is hidden or steers a
+ * terminal is written out. */
+static const struct {
+    const char *name;
+    size_t columns;
+} hard_names[] = {
+    {"plain", 5},
+    {"母線保護", 8},
+    {"cafe\xcc\x81 e\xcc\x81\xcc\xa3", 6},
+    {"שלום", 4},
+    {"\xf0\x9f\x91\xa9", 2},
+    {"\xf0\x9f\x91\xa9\xe2\x80\x8d\xf0\x9f\x91\xa7", 12}, /* woman \u{200d} girl */
+    {"a\xe2\x80\x8b"
+     "b",
+     10},                 /* a\u{200b}b */
+    {"\xe2\x80\xaex", 9}, /* \u{202e}x */
+    {"\033[31m", 8},      /* \x1b[31m */
+    {"\xc2\x9b"
+     "1",
+     9},           /* \u{009b}1 */
+    {"\t=1+1", 8}, /* \x09=1+1 */
+    {"\xff", 1},   /* the sign for what is no UTF-8 */
+};
+
+/* Everything behind the name is ASCII: the column of the point follows from its bytes. */
+START_TEST(columns_stay_aligned_behind_hard_names)
+{
+    enum { WIDEST = 12, N = sizeof hard_names / sizeof *hard_names };
+    struct block *b = report_table(&report, "t", NULL);
+    block_column(&report, b, "name", "Name", "", STYLE_PLAIN);
+    block_column(&report, b, "x", "x", "", STYLE_PLAIN);
+    for (size_t i = 0; i < N; i++) {
+        struct row *row = block_row(&report, b);
+        row_text(&report, row, hard_names[i].name);
+        row_number(&report, row, 1.25, NULL);
+    }
+    const char *coloured = text_of(arena, &report, 60, false, true);
+    struct page_lines lines = lines_of(arena, without_colour(arena, coloured));
+    ck_assert_uint_eq(lines.n, 2 + N);
+    for (size_t i = 0; i < N; i++) {
+        const char *line = lines.at[2 + i], *blank = strrchr(line, ' ');
+        size_t gap = 1;
+        while (blank[-1] == ' ')
+            blank--, gap++;
+        ck_assert_msg(hard_names[i].columns + gap == WIDEST + 2, "%s", line);
+        ck_assert_str_eq(blank + gap, "1.25");
+    }
 }
 END_TEST
 
@@ -251,6 +333,8 @@ Suite *suite_report_table(void)
     tcase_add_checked_fixture(t, setup, teardown);
     tcase_add_test(t, a_small_table);
     tcase_add_test(t, columns_of_data_are_not_on_a_page);
+    tcase_add_test(t, amounts_of_one_column);
+    tcase_add_test(t, columns_stay_aligned_behind_hard_names);
     tcase_add_loop_test(t, numbers_align_on_the_point, 0, 12);
     tcase_add_test(t, the_least_columns_go_first);
     tcase_add_test(t, texts_wrap_and_lose_nothing);

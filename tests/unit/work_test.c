@@ -239,6 +239,7 @@ int main(int argc, char **argv)
     work_round_tests(suite);
     work_bad_tests(suite);
     work_protection_tests(suite);
+    work_turn_tests(suite);
     work_show_tests(suite);
     work_filter_tests(suite);
     SRunner *runner = srunner_create(suite);

@@ -68,6 +68,7 @@ void work_round_tests(Suite *suite);
 void work_show_tests(Suite *suite);
 void work_bad_tests(Suite *suite);
 void work_protection_tests(Suite *suite);
+void work_turn_tests(Suite *suite);
 void work_filter_tests(Suite *suite);
 
 #endif
