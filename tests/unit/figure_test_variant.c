@@ -72,13 +72,13 @@ static void see_common_causes(struct arena *a, const struct model *m, const char
 
 /* Does anything that `o` leads to in `m`, or `o` itself, stand in the option's change? */
 static bool depends(struct arena *a, const struct model *base, const struct model *m,
-                    const char *option, const char *root)
+                    const struct variant *v, size_t option, const char *root)
 {
     struct strmap seen = {0};
     strmap_set(a, &seen, root, NULL);
     for (size_t i = 0; i < seen.n; i++) {
         const struct object *o = model_find(m, seen.at[i].key);
-        if (merge_touches(base, option, seen.at[i].key))
+        if (merge_touches(base, v->n, v->options, option, seen.at[i].key))
             return true;
         see_common_causes(a, m, seen.at[i].key, &seen);
         see_common_causes(a, base, seen.at[i].key, &seen);
@@ -102,7 +102,7 @@ static void check_projection(struct pair_of_registers *p, const struct compiled 
     text_init(&expected, a);
     for (size_t i = 0; i < p->variant->n; i++) {
         const char *option = p->variant->options[i];
-        bool reached = depends(a, p->base->model, p->fresh.model, option, u->id);
+        bool reached = depends(a, p->base->model, p->fresh.model, p->variant, i, u->id);
         if (reached)
             text_printf(&expected, "%s%s", expected.n ? "+" : "@", option);
         ck_assert_int_eq(reached, strmap_has(&p->variant->reached[i], u->id));
