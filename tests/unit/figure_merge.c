@@ -136,6 +136,22 @@ static const struct node *change_of(const struct model *base, const char *option
     return ((const struct option *)model_get(base, KIND_OPTION, option))->change;
 }
 
+/* What the one option says of holding together with the other, or NULL. */
+static const struct node *settled_by(const struct model *base, const char *option,
+                                     const char *other)
+{
+    const struct node *combine = node_get(model_find(base, option)->node, "combine");
+    return combine ? node_get(combine, other) : NULL;
+}
+
+static void change_objects(struct arena *a, struct model_sources *out, const struct node *change)
+{
+    for (size_t s = 0; change && s < change->n; s++)
+        for (size_t k = 0; k < change->pairs[s].value->n; k++)
+            change_object(a, out, kind_of_section(change->pairs[s].key),
+                          &change->pairs[s].value->pairs[k]);
+}
+
 void merge_options(struct arena *a, const struct model *base, size_t n, const char *const *options,
                    struct model_sources *out)
 {
@@ -145,20 +161,27 @@ void merge_options(struct arena *a, const struct model *base, size_t n, const ch
             if (k != KIND_OPTION && k != KIND_DECISION && k != KIND_PLAN && k != KIND_STATE)
                 *array_push(a, out) = (struct model_source){o->kind, o->id, o->node};
         }
-    for (size_t i = 0; i < n; i++) {
-        const struct node *change = change_of(base, options[i]);
-        for (size_t s = 0; s < change->n; s++)
-            for (size_t k = 0; k < change->pairs[s].value->n; k++)
-                change_object(a, out, kind_of_section(change->pairs[s].key),
-                              &change->pairs[s].value->pairs[k]);
-    }
+    for (size_t i = 0; i < n; i++)
+        change_objects(a, out, change_of(base, options[i]));
+    for (size_t i = 0; i < n; i++)
+        for (size_t j = 0; j < n; j++)
+            change_objects(a, out, settled_by(base, options[i], options[j]));
 }
 
-bool merge_touches(const struct model *base, const char *option, const char *id)
+static bool names(const struct node *change, const char *id)
 {
-    const struct node *change = change_of(base, option);
-    for (size_t s = 0; s < change->n; s++)
+    for (size_t s = 0; change && s < change->n; s++)
         if (node_get(change->pairs[s].value, id))
             return true;
     return false;
+}
+
+bool merge_touches(const struct model *base, size_t n, const char *const *options, size_t option,
+                   const char *id)
+{
+    bool touches = names(change_of(base, options[option]), id);
+    for (size_t i = 0; i < n; i++)
+        touches = touches || names(settled_by(base, options[option], options[i]), id) ||
+                  names(settled_by(base, options[i], options[option]), id);
+    return touches;
 }
