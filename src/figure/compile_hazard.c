@@ -6,6 +6,7 @@
  * its function sees the fault, and no earlier row has cleared. What schemes share is
  * exact, since all rows are functions of the same variables. */
 #include "figure/compile_hazard.h"
+#include "figure/likeness.h"
 #include "figure/span.h"
 
 #include <stdlib.h>
@@ -268,6 +269,21 @@ static void add_disabled(struct tree *t)
     }
 }
 
+/* The same response, averaged over the same time, is there already where a change reaches only
+ * what it costs or how often it is called on. */
+static node_id response_node(struct tree *t, const struct diagram *d, const node_id *args)
+{
+    struct hazard_exports *x = t->exports;
+    struct figures *f = t->building->figures;
+    const struct compiled *unit = t->building->unit;
+    node_id known = likeness_find(f, unit->id, d, x->n_events, args, &x->span.windows);
+    if (known != NODE_NONE)
+        return known;
+    node_id made = graph_diagram_over(f->graph, d, x->n_events, args, &x->span.windows);
+    likeness_keep(f, unit->id, made);
+    return made;
+}
+
 static void add_diagram(struct tree *t, const struct diagram *d)
 {
     struct hazard_exports *x = t->exports;
@@ -277,7 +293,7 @@ static void add_diagram(struct tree *t, const struct diagram *d)
     x->events = t->wiring.events.at;
     x->diagram = d;
     x->span = span_of(f, x->n_events, wiring_behaviours(t->arena, &t->wiring));
-    x->node = graph_diagram_over(f->graph, d, x->n_events, args, &x->span.windows);
+    x->node = response_node(t, d, args);
 }
 
 /* The probability of an end in one window, or at all times. */

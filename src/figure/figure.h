@@ -264,6 +264,7 @@ struct figures {
     struct text key;               /* scratch: one of these keys */
     struct strmap variants;        /* "A+B" -> struct variant */
     struct strmap made_up;         /* "[NAME]" -> struct change */
+    struct strmap responses;       /* hazard -> its DIAGRAM nodes (likeness.h) */
     struct strmap used_by;         /* id -> struct objects: what refers to it, in the base */
     struct strmap groups;          /* element -> struct groups: its common causes in the base */
     size_t n_indexed;              /* common causes of the base that are in `groups` */
