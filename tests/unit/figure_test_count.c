@@ -77,10 +77,63 @@ START_TEST(only_what_changes_is_compiled)
 }
 END_TEST
 
+static node_id response_of(struct loaded *l, const char *option)
+{
+    const struct variant *v = loaded_variant(l, option ? 1 : 0, &option);
+    return ((const struct hazard_exports *)loaded_compile(l, v, "H")->exports)->node;
+}
+
+/* COST, OFTEN and SAME (which states what is there already) leave the response alone; SURE, BLIND
+ * and MORE do not: another rate, another share of faults that are seen, another row. */
+START_TEST(responses_alike_are_one)
+{
+    static const char text[] =
+        "register: {title: Alike, currency: EUR, prices: 2026, start: 2027, horizon: 6 a, "
+        "discount: "
+        "4 % per a}\n"
+        "elements:\n"
+        "  E: {kind: relay, undetected: {median: 0.02 per a, error-factor: 3}, test: {every: 2 a, "
+        "last: 2026-03-01}}\n"
+        "  B: {kind: relay, per-demand: 0.1}\n"
+        "schemes: {S: {all: [E]}, T: {all: [B]}}\n"
+        "hazards:\n"
+        "  H: {name: H, frequency: 0.5 per a, response: {main: {cleared-by: S, in: 0.1 s, sees: "
+        "90 %, outcome: none}, never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: "
+        "{loss: {category: c, is: 1000 EUR}}}}}\n"
+        "options:\n"
+        "  COST: {name: A, change: {hazards: {H: {outcomes: {lost: {damage: {loss: {is: 0.5 * "
+        "was}}}}}}}}\n"
+        "  OFTEN: {name: A, change: {hazards: {H: {frequency: 0.5 * was}}}}\n"
+        "  SAME: {name: A, change: {elements: {E: {test: {every: 2 a}}}}}\n"
+        "  SURE: {name: A, change: {elements: {E: {undetected: {median: 0.01 per a, error-factor: "
+        "3}}}}}\n"
+        "  BLIND: {name: A, change: {hazards: {H: {response: {main: {sees: 80 %}}}}}}\n"
+        "  MORE: {name: A, change: {hazards: {H: {response: {more: {cleared-by: T, in: 1 s, "
+        "outcome: none}}}}}}\n";
+    struct arena *a = arena_new(NULL);
+    struct loaded l;
+    loaded_text(&l, a, text, NULL);
+    node_id now = response_of(&l, NULL);
+    static const char *const alike[] = {"COST", "OFTEN", "SAME"};
+    static const char *const other[] = {"SURE", "BLIND", "MORE"};
+    for (size_t i = 0; i < 3; i++)
+        ck_assert_uint_eq(response_of(&l, alike[i]), now);
+    for (size_t i = 0; i < 3; i++)
+        ck_assert_uint_ne(response_of(&l, other[i]), now);
+    double risk = loaded_value(&l, "H.risk");
+    ck_assert_double_eq_tol(loaded_value(&l, "H.risk@COST"), 0.5 * risk, 1e-12 * risk);
+    ck_assert_double_eq_tol(loaded_value(&l, "H.risk@OFTEN"), 0.5 * risk, 1e-12 * risk);
+    ck_assert_double_eq(loaded_value(&l, "H.risk@SAME"), risk);
+    ck_assert_double_lt(loaded_value(&l, "H.risk@SURE"), risk);
+    arena_free(a);
+}
+END_TEST
+
 TCase *figure_count_case(void)
 {
     TCase *t = tcase_create("counts");
     tcase_set_timeout(t, 60);
     tcase_add_test(t, only_what_changes_is_compiled);
+    tcase_add_test(t, responses_alike_are_one);
     return t;
 }
