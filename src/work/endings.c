@@ -132,10 +132,12 @@ void part_endings(struct job *j, const struct weighing *w)
         100 * SHARE_OF_RISK, best->n ? ", now or with what is recommended" : "");
 }
 
-/* "1 in 64 a", or that it never happens. */
-static const char *period_words(struct job *j, figure_id frequency)
+/* "1 in 64 a", "1.54 per a", or that it never happens. */
+static const char *how_often(struct job *j, figure_id frequency)
 {
     double f = value_of(j, frequency);
+    if (f >= 1)
+        return arena_printf(j->arena, "%s per a", plain_text(j, f));
     return f > 0 ? arena_printf(j->arena, "1 in %s a", plain_text(j, 1 / f)) : "never";
 }
 
@@ -149,6 +151,35 @@ static size_t worst_end(const struct job *j, const struct bad_ends *all, const b
     return worst;
 }
 
+static bool in_focus(const struct weighing *w, const char *hazard)
+{
+    for (size_t i = 0; i < w->hazards.n; i++)
+        if (w->hazards.at[i].in_focus && text_equal(w->hazards.at[i].id, hazard))
+            return true;
+    return false;
+}
+
+/* Marks as told what is not asked about; returns how many remain. */
+static size_t keep_focus(const struct weighing *w, const struct bad_ends *all, bool *told)
+{
+    size_t n = 0;
+    for (size_t i = 0; i < all->n; i++) {
+        told[i] = w->decision->focus.n && !in_focus(w, all->at[i].hazard);
+        n += !told[i];
+    }
+    return n;
+}
+
+static void tell_end(struct job *j, struct text *t, const struct bad_end *x, bool both)
+{
+    const char *now = how_often(j, ending_frequency(&x->now));
+    const char *then = how_often(j, ending_frequency(&x->then));
+    text_printf(t, "%s%s (%s, %s) %s today", t->n ? "; " : "", x->name, x->hazard,
+                money_text(j->arena, value_of(j, x->damage), j->model->settings->currency), now);
+    if (both)
+        text_printf(t, ", %s with it", text_equal(now, then) ? "as often" : then);
+}
+
 const char *endings_sentence(struct job *j, const struct weighing *w)
 {
     enum { MOST = 3 };
@@ -158,15 +189,11 @@ const char *endings_sentence(struct job *j, const struct weighing *w)
     text_init(&t, j->arena);
     find_ends(j, w, &all);
     bool *told = NEW_ARRAY(j->arena, all.n, bool);
-    for (size_t i = 0; i < MOST && i < all.n; i++) {
+    size_t n = keep_focus(w, &all, told);
+    for (size_t i = 0; i < MOST && i < n; i++) {
         size_t k = worst_end(j, &all, told);
-        const struct bad_end *x = &all.at[k];
         told[k] = true;
-        text_printf(&t, "%s%s (%s, %s) %s today", i ? "; " : "", x->name, x->hazard,
-                    money_text(j->arena, value_of(j, x->damage), j->model->settings->currency),
-                    period_words(j, ending_frequency(&x->now)));
-        if (best->n)
-            text_printf(&t, ", %s with it", period_words(j, ending_frequency(&x->then)));
+        tell_end(j, &t, &all.at[k], best->n > 0);
     }
-    return all.n ? arena_printf(j->arena, "How often it ends badly: %s.", text_str(&t)) : "";
+    return n ? arena_printf(j->arena, "How often it ends badly: %s.", text_str(&t)) : "";
 }

@@ -208,23 +208,43 @@ static void perspectives(struct memo *m)
 
 /* --- people --- */
 
+/* "9.45e-6 per year (1 in 1.06e5 a)" */
+static const char *risk_words(const struct memo *m, double risk)
+{
+    const char *number = plain_text(m->j, risk);
+    if (risk <= 0)
+        return arena_printf(m->j->arena, "%s per year", number);
+    return arena_printf(m->j->arena, "%s per year (1 in %s a)", number, plain_text(m->j, 1 / risk));
+}
+
+static const char *limit_words(const struct memo *m, double risk)
+{
+    const char *word = people_word(m->j, risk);
+    if (text_equal(word, "intolerable"))
+        return "which is INTOLERABLE by the criteria of the register: money alone must not decide";
+    return *word ? arena_printf(m->j->arena, "which is %s by the criteria of the register", word)
+                 : "the register states no criteria for people";
+}
+
 static void people(struct memo *m)
 {
-    struct job *j = m->j;
+    const struct alternative *nothing = &m->w->alternatives.at[0];
     size_t group;
     if (m->w->groups.n == 0)
         return;
-    double worst = worst_individual_risk(j, m->w, m->best, &group);
-    const char *word = people_word(j, worst);
-    const char *sense = text_equal(word, "intolerable")
-                            ? ", ABOVE the limit of what is tolerable: money alone must not decide"
-                        : *word ? arena_printf(j->arena, ", which is %s by the criteria", word)
-                                : "; the register states no criteria for people";
-    report_note(j->report, "people-with-it",
-                "People: with it a person of %s would bear a risk of death of %s per year%s%s.",
-                m->w->groups.at[group].id, plain_text(j, worst),
-                worst > 0 ? arena_printf(j->arena, " (1 in %s a)", plain_text(j, 1 / worst)) : "",
-                sense);
+    double worst = worst_individual_risk(m->j, m->w, m->best, &group);
+    const char *who = m->w->groups.at[group].id;
+    if (m->best->n == 0) {
+        report_note(m->j->report, "people-with-it",
+                    "People: a person of %s bears a risk of death of %s over all hazards, %s.", who,
+                    risk_words(m, worst), limit_words(m, worst));
+        return;
+    }
+    double today = figure_value(m->j->figures, nothing->individual[group]);
+    report_note(m->j->report, "people-with-it",
+                "People: a person of %s bears a risk of death of %s over all hazards today, and %s "
+                "with it, %s.",
+                who, risk_words(m, today), risk_words(m, worst), limit_words(m, worst));
 }
 
 static void turns(struct memo *m)
@@ -262,11 +282,10 @@ static void untouched(struct memo *m)
     size_t all = m->j->model->of[KIND_HAZARD].n, here = 0;
     for (size_t i = 0; i < m->w->hazards.n; i++)
         here += m->w->hazards.at[i].now != NULL;
-    report_note(
-        m->j->report, "untouched",
-        "Weighed %s %zu of the %zu hazards of the register: those that an option reaches or "
-        "that stand in the focus. What is not in the register is not covered at all.",
-        here == 1 ? "is" : "are", here, all);
+    report_note(m->j->report, "untouched",
+                "Weighed: %zu of the %zu hazards of the register, those that an option reaches or "
+                "that stand in the focus. What is not in the register is not covered at all.",
+                here, all);
 }
 
 static void part_left_out(struct memo *m)

@@ -89,12 +89,9 @@ static const struct customary {
     const char *unit;
     double per_base; /* of these in one of the base unit */
 } customary[] = {
-    {PROPERTY_CUSTOMER_TIME, "h", 8760},
-    {PROPERTY_AVOIDS_TIME, "h", 8760},
-    {PROPERTY_PRESENT_TIME, "h", 8760},
-    {PROPERTY_SAIDI, "min", 525600},
-    {PROPERTY_CAIDI, "min", 525600},
-    {PROPERTY_NOT_SUPPLIED, "MWh", 8.76}, /* of kWa */
+    {PROPERTY_CUSTOMER_TIME, "h", 8760}, {PROPERTY_AVOIDS_TIME, "h", 8760},
+    {PROPERTY_PRESENT_TIME, "h", 8760},  {PROPERTY_SAIDI, "min", 525600},
+    {PROPERTY_CAIDI, "min", 525600},     {PROPERTY_NOT_SUPPLIED, "MWh", 8.76}, /* of kWa */
 };
 
 /* How a property is shown whatever its size; NULL: by its size. */

@@ -5,7 +5,6 @@
 
 #include "work/work.h"
 
-
 /* "do nothing" for people, the options' ids otherwise. */
 static const char *alternative_words(const struct alternative *x)
 {

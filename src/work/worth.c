@@ -227,6 +227,16 @@ static const char *disproportion_word(const struct job *j, const struct alternat
     return value_of(j, x->disproportion) > limit ? "gross" : "not gross";
 }
 
+/* In millions, since the prices of a table may lie far apart. */
+static void price_cell(struct job *j, struct row *row, figure_id id)
+{
+    if (id == FIGURE_NONE)
+        row_empty(j->report, row);
+    else
+        row_number(j->report, row, figure_value(j->figures, id) / 1e6,
+                   figure_name(j->figures, j->arena, id));
+}
+
 static void people_row(struct job *j, struct block *b, const struct weighing *w,
                        const struct alternative *x)
 {
@@ -241,7 +251,7 @@ static void people_row(struct job *j, struct block *b, const struct weighing *w,
         row_text(r, row, people_word(j, worst));
     figure_cell(j, row, x->avoids_fatalities);
     if (any_price(w, false))
-        figure_cell(j, row, x->per_fatality);
+        price_cell(j, row, x->per_fatality);
     if (any_price(w, true)) {
         figure_cell(j, row, x->disproportion);
         row_text(r, row, disproportion_word(j, x));
@@ -260,7 +270,7 @@ static void people_table(struct job *j, const struct weighing *w)
     block_column(r, b, "avoids-fatalities", "Deaths avoided", "1/a", STYLE_PLAIN)->keep = 2;
     if (any_price(w, false))
         block_column(r, b, "net-cost-per-fatality", "Net cost of each",
-                     j->model->settings->currency, STYLE_MONEY)
+                     arena_printf(j->arena, "M%s", j->model->settings->currency), STYLE_PLAIN)
             ->keep = 2;
     if (any_price(w, true)) {
         block_column(r, b, "disproportion", "Disproportion", "", STYLE_RATIO)->keep = 1;
@@ -312,22 +322,39 @@ const char *people_sentence(struct job *j, const struct weighing *w)
 
 /* --- the focus --- */
 
+/* What changes by less than this share of all that is avoided is counted, not named. */
+static const double SMALL_CHANGE = 0.01;
+
+static double change_of(const struct job *j, const struct compiled *now,
+                        const struct compiled *then)
+{
+    return (then ? figure_value(j->figures, then->main) : 0) -
+           (now ? figure_value(j->figures, now->main) : 0);
+}
+
 const char *outside_focus_sentence(struct job *j, const struct weighing *w)
 {
     const struct alternative *best = &w->alternatives.at[w->order[0]];
+    double least = SMALL_CHANGE * fabs(value_of(j, best->avoids));
     struct text t;
+    size_t small = 0;
     text_init(&t, j->arena);
     for (size_t i = 0; w->decision->focus.n && i < w->hazards.n; i++) {
         const struct compiled *now = w->hazards.at[i].now, *then = best->hazards[i];
         if (w->hazards.at[i].in_focus || now == then)
             continue;
-        double change = (then ? figure_value(j->figures, then->main) : 0) -
-                        (now ? figure_value(j->figures, now->main) : 0);
-        text_printf(&t, "%s%s (%s%s)", t.n ? ", " : "", w->hazards.at[i].id, change > 0 ? "+" : "",
-                    money_text(j->arena, change, unit_per_year(j)));
+        double change = change_of(j, now, then);
+        if (fabs(change) < least)
+            small++;
+        else
+            text_printf(&t, "%s%s (%s%s)", t.n ? ", " : "", w->hazards.at[i].id,
+                        change > 0 ? "+" : "", money_text(j->arena, change, unit_per_year(j)));
     }
-    if (t.n == 0)
+    if (t.n == 0 && small == 0)
         return "";
+    if (small)
+        text_printf(&t, "%s%zu by less than %.0f %% of all that it avoids", t.n ? ", and " : "",
+                    small, 100 * SMALL_CHANGE);
     return arena_printf(j->arena, "%s also changes the risk of hazards outside the focus: %s.",
                         best->name, text_str(&t));
 }
