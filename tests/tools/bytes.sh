@@ -35,19 +35,21 @@ checks=0 failed=0
 # What is compared, one command line a line. Text is forced to ASCII or has a twin below:
 # the locale's name decides between UTF-8 and ASCII where nothing else does.
 commands='report --ascii --width 100
-report --json
-report --csv
-report --html
+memo D-VH-DARK --json
+memo D-VH-DARK --html
+memo D-GU --csv
 hazards --ascii
 hazards --csv --site VH --perspective company
+supply --json
+people --csv
 protection --csv --site GU
 grid D-GU --json
-weigh D-TQ --json
-weigh D-TQ --html
-weigh D-GU --csv
+weigh D-TQ --csv
+weigh D-GU --html
 show H-TQ-BUS --json
 show VH-INC1 --ascii
-list values --json
+list options --where site=VH --sort invest --csv
+gaps --json
 explain H-VH-BUS1.risk --json
 explain H-TQ-BUS.risk --csv
 history --json
@@ -60,6 +62,9 @@ help --markdown'
 unicode='hazards --width 120
 weigh D-GU
 explain H-GU-CABLE.risk'
+
+# Under a sanitizer (OHMEN_FEW) the whole report is for the other builds.
+[ -z "${OHMEN_FEW-}" ] || commands=$(printf '%s\n' "$commands" | grep -v '^report\|D-TQ --csv')
 
 complain()
 {
