@@ -4,6 +4,10 @@
  * and holds what it held before, or all that the job brings; and the job can be done
  * again.
  *
+ * A state of the files that was proven twice is taken as proven, and a job done again twice on
+ * the same files as done: known.h tells why that leaves nothing unproven. Chance is the same
+ * each time (shimvfs.h), so that the same moment leaves the same files.
+ *
  *     struct scene c = scene_new(make, job, ctx);
  *     for (k = 0; scene_struck(&c, SHIM_POWER, k, seed, &status, &e); k++)
  *         scene_whole(&c, status, false);
@@ -13,6 +17,7 @@
 #ifndef TESTS_SCENE_H
 #define TESTS_SCENE_H
 
+#include "known.h"
 #include "shimvfs.h"
 #include "store/store.h"
 
@@ -23,12 +28,14 @@ typedef ohmen_status scene_job(void *ctx, const char *vfs, struct arena *a, cons
 
 struct scene {
     struct arena *a;
-    const char *path;
+    const char *folder, *path;
     scene_job *job;
     void *ctx;
-    char *bytes; /* of the register before, one closed file */
+    bool repeats; /* the job may also be done where what it brings is there; scene_new: false */
+    char *bytes;  /* of the register before, one closed file */
     size_t n;
     char before[STORE_HASH_TEXT], after[STORE_HASH_TEXT]; /* contents */
+    struct known *proven, *done_again;
 };
 
 /* `make` makes the register at `path` and closes it. The job is done once, so that it is
@@ -53,7 +60,8 @@ bool scene_killed(const struct scene *c, size_t k);
  * program and leave the entry). Returns whether it is there. */
 bool scene_whole(const struct scene *c, ohmen_status status, bool certain);
 
-/* Does the job again, undisturbed, where it is not there yet, and proves that it is then. */
+/* Does the job again, undisturbed, where it is not there yet or the job repeats, and proves that
+ * it is there then. */
 void scene_retry(const struct scene *c, bool there);
 
 /* Fails the test with the error's text when it is one. */

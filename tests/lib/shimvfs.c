@@ -294,6 +294,19 @@ static int shim_full_path(sqlite3_vfs *v, const char *name, int n, char *out)
     return shim_of(v)->below->xFullPathname(shim_of(v)->below, name, n, out);
 }
 
+/* What SQLite starts its random numbers from: always the same. */
+static int shim_randomness(sqlite3_vfs *v, int n, char *out)
+{
+    (void)v;
+    memset(out, 1, (size_t)n);
+    return n;
+}
+
+void shim_same_chance(void)
+{
+    sqlite3_randomness(0, NULL);
+}
+
 void shim_install(struct shim *s, const char *name, enum shim_way way, size_t fail_at)
 {
     *s = (struct shim){.way = way, .fail_at = fail_at, .below = sqlite3_vfs_find(NULL)};
@@ -306,6 +319,7 @@ void shim_install(struct shim *s, const char *name, enum shim_way way, size_t fa
     s->vfs.xDelete = shim_delete;
     s->vfs.xAccess = shim_access;
     s->vfs.xFullPathname = shim_full_path;
+    s->vfs.xRandomness = shim_randomness;
     sqlite3_vfs_register(&s->vfs, 0);
 }
 

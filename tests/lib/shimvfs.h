@@ -59,6 +59,10 @@ void shim_install(struct shim *s, const char *name, enum shim_way way, size_t fa
 /* Makes it the file system of whoever names none, until shim_remove. */
 void shim_for_all(struct shim *s);
 
+/* Starts SQLite's random numbers (the salt of a log is one) anew from those of the file system
+ * of whoever names none; the shim's are always the same. */
+void shim_same_chance(void);
+
 /* Puts all files that were written through it into a state that a power cut may leave:
  * what was synced, and of the 512-byte sectors written since a random subset (seed 0:
  * none). To be called once all connections are closed. */

@@ -230,6 +230,45 @@ START_TEST(layouts)
 }
 END_TEST
 
+/* Columns are code points: no mark of a report combines with another or is wide. */
+static size_t check_lines(const char *s, size_t width, bool ascii)
+{
+    size_t lines = 0, columns = 0;
+    for (; *s; s++) {
+        unsigned char byte = (unsigned char)*s;
+        if (byte == '\n') {
+            ck_assert_msg(columns <= width, "%zu columns of %zu in line %zu", columns, width,
+                          lines);
+            lines++;
+            columns = 0;
+            continue;
+        }
+        ck_assert(!ascii || (byte >= ' ' && byte <= '~'));
+        columns += (byte & 0xC0) != 0x80;
+    }
+    return lines;
+}
+
+/* No line of the sample's whole report is wider than asked, and ASCII is ASCII. */
+START_TEST(the_whole_report_fits)
+{
+    struct made m = made_new();
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_report_all(m.reg, NULL, &r, &e), &e);
+    for (unsigned width = 60; width <= 200; width += 20) {
+        ohmen_layout layout = ohmen_layout_defaults();
+        layout.width = width;
+        for (int ascii = 0; ascii < 2; ascii++) {
+            layout.ascii = ascii == 1;
+            ck_assert_uint_gt(check_lines(ohmen_report_text(r, &layout), width, ascii == 1), 300);
+        }
+    }
+    ohmen_report_free(r);
+    made_end(&m);
+}
+END_TEST
+
 START_TEST(the_schema_is_json)
 {
     size_t bad;
@@ -253,6 +292,7 @@ void work_report_tests(Suite *suite)
     tcase_add_test(t, grids_mark_each_hazard);
     tcase_add_test(t, the_whole_report);
     tcase_add_test(t, layouts);
+    tcase_add_test(t, the_whole_report_fits);
     tcase_add_test(t, the_schema_is_json);
     suite_add_tcase(suite, t);
 }
