@@ -51,10 +51,6 @@ const char *payback_sentence(struct job *j, struct weighing *w, const struct alt
     if (year == flow->n)
         return "It does not pay for itself within the horizon.";
     return arena_printf(j->arena,
-                        "With interest it has paid for itself by the end of %s, the %zu%s year.",
-                        flow->years[year].label, year + 1,
-                        year == 0   ? "st"
-                        : year == 1 ? "nd"
-                        : year == 2 ? "rd"
-                                    : "th");
+                        "With interest it has paid for itself by the end of %s, after %zu year%s.",
+                        flow->years[year].label, year + 1, year == 0 ? "" : "s");
 }

@@ -2,6 +2,8 @@
 /* The memo of one decision, to be attached to a request for money: what is asked, what is
  * recommended, what it costs, what it avoids for whom, how often it ends badly, what it rests on,
  * what would turn it, what is left out, who signs. Words around the parts that `weigh` prints. */
+#include <math.h>
+
 #include "figure/horizon.h"
 #include "work/work.h"
 
@@ -89,7 +91,7 @@ static double option_figure(const struct memo *m, const char *option, const char
                                                                   : 0;
 }
 
-/* "34 kEUR in 2027 and 60 kEUR in 2030"; "" without investment. */
+/* "34 kEUR in 2027", "34 kEUR for A in 2027 and 60 kEUR for B in 2030"; "" without investment. */
 static const char *investments(const struct memo *m, const struct alternative *x)
 {
     struct text t;
@@ -99,8 +101,11 @@ static const char *investments(const struct memo *m, const struct alternative *x
         if (!o->invest)
             continue;
         day on = o->invest->on == DAY_NONE ? horizon_start(m->j->model->settings) : o->invest->on;
-        text_printf(&t, "%s%s in %d", t.n ? " and " : "",
-                    money(m, option_figure(m, x->options[i], "invest")), date_year(on));
+        text_printf(&t, "%s%s", t.n ? " and " : "",
+                    money(m, option_figure(m, x->options[i], "invest")));
+        if (x->n > 1)
+            text_printf(&t, " for %s", x->options[i]);
+        text_printf(&t, " in %d", date_year(on));
     }
     return text_str(&t);
 }
@@ -132,7 +137,7 @@ static void costs(struct memo *m)
                 *once ? "an investment of " : "no investment", once,
                 yearly > 0 ? ", and to run it " : "", yearly > 0 ? money_rate(m, yearly) : "",
                 money(m, value_of(m, x->present_cost)), money_rate(m, value_of(m, x->annual_cost)),
-                payback_sentence(m->j, m->w, x));
+                *once ? payback_sentence(m->j, m->w, x) : "");
 }
 
 /* --- what it avoids --- */
@@ -226,13 +231,33 @@ static const char *limit_words(const struct memo *m, double risk)
                  : "the register states no criteria for people";
 }
 
-static void people(struct memo *m)
+/* The group that bears most where that is intolerable, or nothing is done; else the one for whom
+ * the alternative changes most. */
+static size_t told_group(const struct memo *m)
 {
     const struct alternative *nothing = &m->w->alternatives.at[0];
     size_t group;
+    double most = 0, worst = worst_individual_risk(m->j, m->w, m->best, &group);
+    if (text_equal(people_word(m->j, worst), "intolerable"))
+        return group;
+    for (size_t i = 0; i < m->w->groups.n; i++) {
+        double change = fabs(figure_value(m->j->figures, nothing->individual[i]) -
+                             figure_value(m->j->figures, m->best->individual[i]));
+        if (change > most) {
+            most = change;
+            group = i;
+        }
+    }
+    return group;
+}
+
+static void people(struct memo *m)
+{
+    const struct alternative *nothing = &m->w->alternatives.at[0];
     if (m->w->groups.n == 0)
         return;
-    double worst = worst_individual_risk(m->j, m->w, m->best, &group);
+    size_t group = told_group(m);
+    double worst = figure_value(m->j->figures, m->best->individual[group]);
     const char *who = m->w->groups.at[group].id;
     if (m->best->n == 0) {
         report_note(m->j->report, "people-with-it",
