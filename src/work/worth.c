@@ -297,7 +297,7 @@ static void people_table(struct job *j, const struct weighing *w)
             ->keep = 2;
     if (any_price(w, true)) {
         block_column(r, b, "disproportion", "Disproportion", "", STYLE_RATIO)->keep = 1;
-        block_column(r, b, "gross", "Gross", "", STYLE_PLAIN)->keep = 1;
+        block_column(r, b, "gross", "Gross", "", STYLE_PLAIN)->keep = 3;
     }
     for (size_t i = 0; i < w->alternatives.n; i++)
         people_row(j, b, w, &w->alternatives.at[w->order[i]]);
