@@ -2,6 +2,7 @@
 /* The memo of one decision, to be attached to a request for money: what is asked, what is
  * recommended, what it costs, what it avoids for whom, how often it ends badly, what it rests on,
  * what would turn it, what is left out, who signs. Words around the parts that `weigh` prints. */
+#include <limits.h>
 #include <math.h>
 
 #include "figure/horizon.h"
@@ -17,6 +18,12 @@ struct memo {
 static double value_of(const struct memo *m, figure_id id)
 {
     return id == FIGURE_NONE ? 0 : figure_value(m->j->figures, id);
+}
+
+/* Is there anything to weigh beside doing nothing? */
+static bool any_alternative(const struct memo *m)
+{
+    return m->w->alternatives.n > 1;
 }
 
 static const char *money(const struct memo *m, double x)
@@ -91,21 +98,43 @@ static double option_figure(const struct memo *m, const char *option, const char
                                                                   : 0;
 }
 
-/* "34 kEUR in 2027", "34 kEUR for A in 2027 and 60 kEUR for B in 2030"; "" without investment. */
+static int investment_year(const struct memo *m, const struct option *o)
+{
+    return date_year(o->invest->on == DAY_NONE ? horizon_start(m->j->model->settings)
+                                               : o->invest->on);
+}
+
+/* What an option takes of one year in investment; 0 where it invests nothing then. */
+static double invested_in(const struct memo *m, const char *option, int year)
+{
+    const struct option *o = option_of(m, option);
+    return o->invest && investment_year(m, o) == year ? option_figure(m, option, "invest") : 0;
+}
+
+/* The first year after this one in which something is invested; INT_MAX when there is none. */
+static int next_investment(const struct memo *m, const struct alternative *x, int after)
+{
+    int next = INT_MAX;
+    for (size_t i = 0; i < x->n; i++) {
+        const struct option *o = option_of(m, x->options[i]);
+        int year = o->invest ? investment_year(m, o) : after;
+        if (year > after && year < next)
+            next = year;
+    }
+    return next;
+}
+
+/* "48 kEUR in 2027 and 60 kEUR in 2030", each year once; "" without investment. */
 static const char *investments(const struct memo *m, const struct alternative *x)
 {
     struct text t;
     text_init(&t, m->j->arena);
-    for (size_t i = 0; i < x->n; i++) {
-        const struct option *o = option_of(m, x->options[i]);
-        if (!o->invest)
-            continue;
-        day on = o->invest->on == DAY_NONE ? horizon_start(m->j->model->settings) : o->invest->on;
-        text_printf(&t, "%s%s", t.n ? " and " : "",
-                    money(m, option_figure(m, x->options[i], "invest")));
-        if (x->n > 1)
-            text_printf(&t, " for %s", x->options[i]);
-        text_printf(&t, " in %d", date_year(on));
+    for (int year = next_investment(m, x, INT_MIN); year < INT_MAX;
+         year = next_investment(m, x, year)) {
+        double sum = 0;
+        for (size_t i = 0; i < x->n; i++)
+            sum += invested_in(m, x->options[i], year);
+        text_printf(&t, "%s%s in %d", t.n ? " and " : "", money(m, sum), year);
     }
     return text_str(&t);
 }
@@ -161,10 +190,10 @@ static const char *customers_words(const struct memo *m)
         return "";
     return arena_printf(
         m->j->arena,
-        " Customers are without supply for %s h less in a mean year, "
+        " Customers are without supply for %s h %s in a mean year, "
         "summed over all of them%s.",
-        plain_text(m->j, hours),
-        m->best->per_hour == FIGURE_NONE
+        plain_text(m->j, fabs(hours)), hours > 0 ? "less" : "more",
+        hours < 0 || m->best->per_hour == FIGURE_NONE
             ? ""
             : arena_printf(m->j->arena, ", at a cost of %s for each such hour",
                            money(m, value_of(m, m->best->per_hour) / HOURS_PER_YEAR)));
@@ -175,17 +204,24 @@ static const char *deaths_words(const struct memo *m)
     double deaths = value_of(m, m->best->avoids_fatalities);
     if (deaths == 0)
         return "";
-    return arena_printf(m->j->arena, " Expected deaths fall by %s per year.",
-                        plain_text(m->j, deaths));
+    return arena_printf(m->j->arena, " Expected deaths %s by %s per year.",
+                        deaths > 0 ? "fall" : "RISE", plain_text(m->j, fabs(deaths)));
+}
+
+static const char *why_nothing(const struct memo *m)
+{
+    if (any_alternative(m))
+        return "What the options would avoid is worth less than they cost; the table of "
+               "alternatives has it.";
+    return m->w->decision->options.n ? "None of the options is possible."
+                                     : "The decision names no options.";
 }
 
 static void avoids(struct memo *m)
 {
     const struct alternative *x = m->best;
     if (x->n == 0) {
-        report_note(m->j->report, "avoids",
-                    "Avoids: nothing. What the options would avoid is worth less than they cost; "
-                    "the table of alternatives has it.");
+        report_note(m->j->report, "avoids", "Avoids: nothing. %s", why_nothing(m));
         return;
     }
     const char *by = avoids_by_perspective(m);
@@ -266,6 +302,13 @@ static void people(struct memo *m)
         return;
     }
     double today = figure_value(m->j->figures, nothing->individual[group]);
+    if (text_equal(risk_words(m, today), risk_words(m, worst))) {
+        report_note(m->j->report, "people-with-it",
+                    "People: a person of %s bears a risk of death of %s over all hazards, today "
+                    "and with it, %s.",
+                    who, risk_words(m, worst), limit_words(m, worst));
+        return;
+    }
     report_note(m->j->report, "people-with-it",
                 "People: a person of %s bears a risk of death of %s over all hazards today, and %s "
                 "with it, %s.",
@@ -286,7 +329,8 @@ static void part_recommendation(struct memo *m)
     ends(m);
     perspectives(m);
     people(m);
-    turns(m);
+    if (any_alternative(m))
+        turns(m);
 }
 
 /* --- what is left out --- */
@@ -344,6 +388,21 @@ static void part_sign(struct memo *m)
 
 /* --- the memo --- */
 
+/* No heading stands over nothing: a decision may name no options, or none that is possible. */
+static void part_grounds(struct memo *m)
+{
+    if (any_alternative(m)) {
+        report_heading(m->j->report, 2, "What it rests on, and what would turn it");
+        part_rests_on(m->j, m->w);
+        part_turn(m->j, m->w);
+    }
+    if (m->w->decision->options.n == 0)
+        return;
+    report_heading(m->j->report, 2, "Money over the years");
+    part_options(m->j, m->w);
+    part_flow(m->j, m->w);
+}
+
 static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
 {
     weigh_rank(j->figures, w);
@@ -359,12 +418,7 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     part_endings(j, w);
     part_weighed_hazards(j, w);
     part_weighing_grid(j, w);
-    report_heading(j->report, 2, "What it rests on, and what would turn it");
-    part_rests_on(j, w);
-    part_turn(j, w);
-    report_heading(j->report, 2, "Money over the years");
-    part_options(j, w);
-    part_flow(j, w);
+    part_grounds(&m);
     part_left_out(&m);
     part_sign(&m);
 }

@@ -49,7 +49,7 @@ void part_worth_by_perspective(struct job *j, const struct weighing *w)
 {
     const struct rows *rows = &j->model->settings->perspectives;
     struct report *r = j->report;
-    if (rows->n < 2)
+    if (rows->n < 2 || w->alternatives.n < 2)
         return;
     struct block *b = report_table(r, "worth-by-perspective",
                                    "Net present value to each perspective, and its rank there");
@@ -258,6 +258,30 @@ static void people_row(struct job *j, struct block *b, const struct weighing *w,
     }
 }
 
+static const char *disproportion_words(struct job *j)
+{
+    return arena_printf(j->arena,
+                        " Disproportion: that cost over what the register would spend on each "
+                        "expected death%s.",
+                        people_criteria(j)->disproportion ? "; gross above its limit" : "");
+}
+
+/* What the columns mean that are there. */
+static void people_words(struct job *j, const struct weighing *w)
+{
+    report_note(
+        j->report, "people-words",
+        "Risk of a person: of death, per year, over all hazards of the register, once the options "
+        "are in service, as a mean over the horizon (the chapter on people judges by the highest "
+        "year); of the groups that the hazards weighed here may harm, that which bears "
+        "most.%s%s Deaths stand beside the money and are not part of it.",
+        any_price(w, false) ? " Net cost of each death avoided: what an alternative costs beyond "
+                              "the damage that it avoids; empty where it avoids more than it "
+                              "costs, or no deaths."
+                            : "",
+        any_price(w, true) ? disproportion_words(j) : "");
+}
+
 static void people_table(struct job *j, const struct weighing *w)
 {
     struct report *r = j->report;
@@ -274,19 +298,11 @@ static void people_table(struct job *j, const struct weighing *w)
             ->keep = 2;
     if (any_price(w, true)) {
         block_column(r, b, "disproportion", "Disproportion", "", STYLE_RATIO)->keep = 1;
-        block_column(r, b, "gross", "Gross", "", STYLE_PLAIN)->keep = 1;
+        block_column(r, b, "gross", "Gross", "", STYLE_PLAIN)->keep = 3;
     }
     for (size_t i = 0; i < w->alternatives.n; i++)
         people_row(j, b, w, &w->alternatives.at[w->order[i]]);
-    report_note(
-        r, "people-words",
-        "Risk of a person: of death, per year, over all hazards of the register, in the group that "
-        "bears most, once the options are in service.%s Deaths stand beside the money and are not "
-        "part of it.",
-        any_price(w, false) ? " Net cost of each death avoided: what an alternative costs beyond "
-                              "the damage that it "
-                              "avoids; empty where it avoids more than it costs, or no deaths."
-                            : "");
+    people_words(j, w);
 }
 
 void part_customers_and_people(struct job *j, const struct weighing *w)
