@@ -315,6 +315,13 @@ static void people(struct memo *m)
                 who, risk_words(m, today), risk_words(m, worst), limit_words(m, worst));
 }
 
+static void further(struct memo *m)
+{
+    const char *words = further_sentence(m->j, m->w);
+    if (*words)
+        report_note(m->j->report, "people-further", "%s", words);
+}
+
 static void turns(struct memo *m)
 {
     report_note(m->j->report, "turns", "%s", turn_sentence(m->j, m->w));
@@ -329,6 +336,7 @@ static void part_recommendation(struct memo *m)
     ends(m);
     perspectives(m);
     people(m);
+    further(m);
     if (any_alternative(m))
         turns(m);
 }

@@ -197,6 +197,7 @@ void part_weighing(struct job *j, struct weighing *w)
     weigh_rank(j->figures, w);
     sentence(j, "recommendation", weighing_sentence(j, w));
     sentence(j, "people", people_sentence(j, w));
+    sentence(j, "people-further", further_sentence(j, w));
     sentence(j, "to-others", perspectives_sentence(j, w));
     sentence(j, "outside-focus", outside_focus_sentence(j, w));
     part_alternatives(j, w);

@@ -158,6 +158,10 @@ const char *perspectives_sentence(struct job *j, const struct weighing *w);
 const char *outside_focus_sentence(struct job *j, const struct weighing *w);
 /* Whether the best alternative leaves people with a risk above what is tolerable; "" else. */
 const char *people_sentence(struct job *j, const struct weighing *w);
+/* The alternative that avoids more deaths than the best one at the least disproportion: what each
+ * costs beyond it, and whether that is gross (HSE, Reducing risks, protecting people, 2001, from
+ * memory); "" without such a one, or where the register does not state what a death is worth. */
+const char *further_sentence(struct job *j, const struct weighing *w);
 /* The greatest risk of a person of the weighed groups under an alternative; *group: whose. There
  * is at least one group. */
 double worst_individual_risk(const struct job *j, const struct weighing *w,
@@ -252,8 +256,8 @@ struct site_row {
 };
 struct supply_part {
     const struct hazards *hazards;
-    bool any;           /* does some hazard interrupt somebody? */
-    struct supply sums; /* of the register, or of the site that is asked for */
+    bool any;                     /* does some hazard interrupt somebody? */
+    struct supply sums;           /* of the register, or of the site that is asked for */
     ARRAY(struct site_row) sites; /* that have hazards */
 };
 ohmen_status supply_compile(struct job *j, const struct hazards *h, struct supply_part *s,

@@ -336,6 +336,68 @@ const char *people_sentence(struct job *j, const struct weighing *w)
                         plain_text(j, worst));
 }
 
+/* What society would spend to avoid one expected death; 0: not stated. */
+static double fatality_worth(const struct job *j)
+{
+    const struct people_criteria *c = people_criteria(j);
+    return c && c->per_fatality ? expr_constant(c->per_fatality->expr) : 0;
+}
+
+/* An alternative that avoids more deaths than the best one, by what that costs beyond it. */
+struct further {
+    const struct alternative *of; /* NULL: there is none */
+    double cost, deaths, disproportion;
+};
+
+static struct further further_than(const struct job *j, const struct alternative *best,
+                                   const struct alternative *x)
+{
+    struct further f = {.of = x};
+    f.cost = value_of(j, best->net) - value_of(j, x->net);
+    f.deaths = value_of(j, x->present_fatalities) - value_of(j, best->present_fatalities);
+    f.disproportion = f.deaths > 0 ? f.cost / (f.deaths * fatality_worth(j)) : INFINITY;
+    return f;
+}
+
+/* Beyond this many times what society would spend nobody asks. */
+static const double FAR_TOO_MUCH = 1000;
+
+/* That with the least disproportion. */
+static struct further least_further(const struct job *j, const struct weighing *w)
+{
+    const struct alternative *best = &w->alternatives.at[w->order[0]];
+    struct further least = {.disproportion = INFINITY};
+    for (size_t i = 0; i < w->alternatives.n; i++) {
+        struct further f = further_than(j, best, &w->alternatives.at[w->order[i]]);
+        if (f.of != best && f.disproportion < least.disproportion)
+            least = f;
+    }
+    return least;
+}
+
+const char *further_sentence(struct job *j, const struct weighing *w)
+{
+    const struct people_criteria *c = people_criteria(j);
+    const char *currency = j->model->settings->currency;
+    if (w->groups.n == 0 || fatality_worth(j) <= 0)
+        return "";
+    struct further f = least_further(j, w);
+    if (!f.of || f.disproportion > FAR_TOO_MUCH)
+        return "";
+    double limit = c->disproportion ? expr_constant(c->disproportion->expr) : 0;
+    const char *verdict = limit <= 0                ? ""
+                          : f.disproportion > limit ? ", which is grossly disproportionate"
+                                                    : ", which is NOT grossly disproportionate: to "
+                                                      "leave it out has to be justified";
+    return arena_printf(j->arena,
+                        "For people %s would go further: beside what is best in money it costs %s "
+                        "more, %s for each expected death that it avoids beyond that, %s times "
+                        "what society would spend%s.",
+                        alternative_words(f.of), money_text(j->arena, f.cost, currency),
+                        money_text(j->arena, f.cost / f.deaths, currency),
+                        plain_text(j, f.disproportion), verdict);
+}
+
 /* --- the focus --- */
 
 /* What changes by less than this share of all that is avoided is counted, not named. */

@@ -188,6 +188,93 @@ START_TEST(grids_mark_each_hazard)
 }
 END_TEST
 
+/* --- the page and the text --- */
+
+static ohmen_report *memo(struct made *m, const char *decision)
+{
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_memo(m->reg, NULL, decision, &r, &e), &e);
+    return r;
+}
+
+/* Spans stand inside words: a number is cut at its point, so that points align. */
+static bool ends_word(const char *tag)
+{
+    return !text_starts(tag, "<span") && !text_starts(tag, "</span");
+}
+
+/* The words of a page: what stands outside its tags, blanks between. */
+static char *page_words(struct arena *a, const char *html)
+{
+    char *words = arena_str(a, html), *to = words;
+    bool in_tag = false;
+    for (const char *p = html; *p; p++) {
+        if (*p == '<' && ends_word(p))
+            *to++ = ' ';
+        if (*p == '<' || *p == '>')
+            in_tag = *p == '<';
+        else if (!in_tag)
+            *to++ = *p == '\n' ? ' ' : *p;
+    }
+    *to = 0;
+    return words;
+}
+
+static bool is_number(const char *word)
+{
+    bool digit = false;
+    for (const char *p = word; *p; p++) {
+        digit = digit || (*p >= '0' && *p <= '9');
+        if (!strchr("0123456789.-+e", *p))
+            return false;
+    }
+    return digit;
+}
+
+/* Does a word stand in a text, with blanks or signs around it? */
+static bool has_word(const char *text, const char *word)
+{
+    size_t n = strlen(word);
+    for (const char *p = strstr(text, word); p; p = strstr(p + 1, word)) {
+        bool begins = p == text || !strchr("0123456789.e", p[-1]);
+        if (begins && !strchr("0123456789.e", p[n]))
+            return true;
+    }
+    return false;
+}
+
+/* Every figure that the data name stands on the page under its name, and every number of the
+ * text, as it is rounded there, stands on it. */
+START_TEST(the_page_has_what_the_text_has)
+{
+    static const char mark[] = "\"figure\": \"";
+    struct made m = made_new();
+    const char *json = test_json(m.a, memo(&m, "D-VH-DARK"));
+    ohmen_report *r = memo(&m, "D-VH-DARK");
+    ohmen_layout layout = ohmen_layout_defaults();
+    layout.width = 200;
+    char *html = arena_str(m.a, ohmen_report_html(r));
+    char *text = arena_str(m.a, ohmen_report_text(r, &layout));
+    ohmen_report_free(r);
+    size_t figures = 0, numbers = 0;
+    for (const char *p = strstr(json, mark); p; p = strstr(p, mark), figures++) {
+        p += strlen(mark);
+        const char *name = arena_strn(m.a, p, strcspn(p, "\""));
+        ck_assert_msg(strstr(html, arena_printf(m.a, "data-figure=\"%s\"", name)), "%s", name);
+    }
+    const char *words = page_words(m.a, html);
+    for (char *word = strtok(text, " \n"); word; word = strtok(NULL, " \n"))
+        if (is_number(word)) {
+            numbers++;
+            ck_assert_msg(has_word(words, word), "%s is not on the page", word);
+        }
+    ck_assert_uint_gt(figures, 150);
+    ck_assert_uint_gt(numbers, 250);
+    made_end(&m);
+}
+END_TEST
+
 START_TEST(the_whole_report)
 {
     static const char *const parts[] = {"title-block", "summary", "hazards", "grid",
@@ -290,6 +377,7 @@ void work_report_tests(Suite *suite)
     tcase_add_test(t, a_hazard_is_shown_with_its_ends_and_an_element_with_its_users);
     tcase_add_test(t, decisions_are_weighed);
     tcase_add_test(t, grids_mark_each_hazard);
+    tcase_add_test(t, the_page_has_what_the_text_has);
     tcase_add_test(t, the_whole_report);
     tcase_add_test(t, layouts);
     tcase_add_test(t, the_whole_report_fits);
