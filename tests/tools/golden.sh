@@ -130,8 +130,8 @@ check()
     fi
 }
 
-# Under a sanitizer one case in six is run (OHMEN_FEW): there the ways are searched for wrong
-# memory, not the outputs.
+# One case in six is run where OHMEN_FEW is set: by builds whose outputs are known to be those of
+# another one, and under sanitizers, where the ways are searched for wrong memory.
 turn=0
 for name in "$@"; do
     turn=$((turn + 1))
