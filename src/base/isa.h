@@ -21,7 +21,7 @@ enum isa {
 #define X(name, needs) ISA_##name,
     ISAS(X)
 #undef X
-    ISA_COUNT
+        ISA_COUNT
 };
 
 /* "plain" */

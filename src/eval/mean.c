@@ -54,6 +54,16 @@ struct means *means_new(struct arena *a, struct eval *v, const struct mean_sourc
     return m;
 }
 
+struct eval *means_eval(struct means *m)
+{
+    return m->v;
+}
+
+struct spreads *means_spreads(struct means *m)
+{
+    return &m->knots.spreads;
+}
+
 /* NULL where the mean is the point value. */
 static const struct curved *curved_of(const struct means *m, node_id n)
 {
@@ -227,8 +237,7 @@ static bool move(struct means *m, node_id n)
     return true;
 }
 
-/* From point values to moved ones, and back. */
-static void change_over(struct means *m)
+void means_change_over(struct means *m)
 {
     for (size_t i = 0; i < m->moved.n; i++) {
         struct dressed *d = &m->moved.at[i];
@@ -270,7 +279,7 @@ static ohmen_status update_node(struct means *m, node_id n, ohmen_error *e)
 ohmen_status means_update(struct means *m, node_id *culprit, ohmen_error *e)
 {
     ohmen_status status = OHMEN_OK;
-    change_over(m);
+    means_change_over(m);
     for (; m->done < m->v->done && status == OHMEN_OK; m->done++) {
         status = update_node(m, (node_id)m->done, e);
         if (status != OHMEN_OK && culprit)
@@ -278,7 +287,7 @@ ohmen_status means_update(struct means *m, node_id *culprit, ohmen_error *e)
     }
     if (status != OHMEN_OK)
         m->done--;
-    change_over(m);
+    means_change_over(m);
     return status;
 }
 

@@ -47,6 +47,7 @@
 #define EVAL_MEAN_H
 
 #include "eval/eval.h"
+#include "math/dist.h"
 
 #define MEAN_SETS 16
 #define MEAN_STRATA 32
@@ -62,6 +63,10 @@ struct mean_source {
     size_t (*atoms)(void *ctx, uint32_t input, const double **values, const double **probabilities);
     /* A name that does not depend on what else is in the graph. */
     const char *(*name)(void *ctx, uint32_t input);
+    /* An input is the result, times a value of *dist, whose arrays live as long as the means. */
+    double (*dist)(void *ctx, uint32_t input, struct dist *dist);
+    /* Does it differ from one occurrence to the next, rather than being unknown? */
+    bool (*varies)(void *ctx, uint32_t input);
 };
 
 enum mean_method { MEAN_EXACT, MEAN_QUADRATURE, MEAN_SAMPLE };
@@ -81,6 +86,12 @@ ohmen_status means_update(struct means *m, node_id *culprit, ohmen_error *e);
 double means_value(const struct means *m, node_id n);
 /* Standard error of a sampled mean; 0 where nothing was sampled. */
 double means_error(const struct means *m, node_id n);
+/* The evaluation that was given. */
+struct eval *means_eval(struct means *m);
+
+/* From point values to the values at which means are taken, which are other ones where HELD moves
+ * something, and back. In between nothing may be evaluated or asked of the means. */
+void means_change_over(struct means *m);
 /* The worst method in what the node's mean is made of. */
 enum mean_method means_method(const struct means *m, node_id n);
 

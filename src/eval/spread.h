@@ -32,6 +32,9 @@ struct spreads {
     size_t n, n_slots;
 };
 
+/* Those of the means, which has them for all its knots. */
+struct spreads *means_spreads(struct means *m);
+
 /* The spread of an input; its rule and sample are not made yet. */
 struct spread *spreads_find(struct spreads *s, uint32_t input);
 

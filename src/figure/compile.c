@@ -95,16 +95,27 @@ static node_id compile_stated(struct building *b, const struct expr *e)
     return apart;
 }
 
-node_id compile_quantity(struct building *b, const struct quantity *q)
+static node_id compile_input(struct building *b, const struct quantity *q, bool varies)
 {
     struct figures *f = b->figures;
     if (q->shape == SHAPE_EXPRESSION)
         return compile_stated(b, q->expr);
     *array_push(f->arena, &f->inputs) = q;
+    *array_push(f->arena, &f->input_varies) = varies;
     const char *part = b->unit->part;
     *array_push(f->arena, &f->input_names) = arena_printf(
         f->arena, "%s%s%s#%u", b->unit->id, part ? "/" : "", part ? part : "", b->unit->n_inputs++);
     return graph_input(f->graph, (uint32_t)(f->inputs.n - 1), quantity_mean(q), q->dim);
+}
+
+node_id compile_quantity(struct building *b, const struct quantity *q)
+{
+    return compile_input(b, q, false);
+}
+
+node_id compile_drawn(struct building *b, const struct quantity *is, const struct quantity *varies)
+{
+    return compile_input(b, is ? is : varies, !is);
 }
 
 static const char *expr_reads(struct arena *a, const struct expr *e)
@@ -132,23 +143,18 @@ static void begin_main(struct figures *f, const struct variant *v, const struct 
     b->unit->main = compiled_add(b, p, NULL, NULL, n, source, quantity_reads(f, q));
 }
 
-static struct compiled *compile_main(struct figures *f, const struct variant *v,
-                                     const struct object *o, enum property p,
-                                     const struct quantity *q, const char *source)
-{
-    struct building b;
-    begin_main(f, v, o, p, q, source, &b);
-    compiled_end(&b);
-    return b.unit;
-}
-
 static ohmen_status compile_value(struct figures *f, const struct variant *v,
                                   const struct object *o, struct compiled **out, ohmen_error *e)
 {
     const struct value *value = o->data;
-    const struct quantity *q = value->is ? value->is : value->varies;
+    struct building b;
     (void)e;
-    *out = compile_main(f, v, o, PROPERTY_VALUE, q, value->source);
+    compiled_begin(f, v, o, o->id, &b);
+    node_id n = compile_drawn(&b, value->is, value->varies);
+    const char *reads = quantity_reads(f, value->is ? value->is : value->varies);
+    b.unit->main = compiled_add(&b, PROPERTY_VALUE, NULL, NULL, n, value->source, reads);
+    compiled_end(&b);
+    *out = b.unit;
     return OHMEN_OK;
 }
 

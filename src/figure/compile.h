@@ -74,6 +74,8 @@ node_id compile_expr(struct building *b, const struct expr *e);
 node_id ratio_of_means(struct building *b, node_id x, node_id y);
 /* An expression, or the mean of a distribution as an input. */
 node_id compile_quantity(struct building *b, const struct quantity *q);
+/* What is unknown (`is`), or drawn anew at each occurrence (`varies`): the one that is not NULL. */
+node_id compile_drawn(struct building *b, const struct quantity *is, const struct quantity *varies);
 /* How a quantity reads: its canonical text, or that of the distribution. */
 const char *quantity_reads(struct figures *f, const struct quantity *q);
 

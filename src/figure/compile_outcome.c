@@ -62,7 +62,7 @@ static struct items plain_items(struct tree *t, size_t k)
             continue;
         }
         const struct quantity *q = item_quantity(item);
-        node_id n = compile_quantity(b, q);
+        node_id n = compile_drawn(b, item->is, item->varies);
         compiled_add(b, PROPERTY_DAMAGE, t->hazard->outcomes.keys[k], o->damage.keys[i], n,
                      item->source, quantity_reads(b->figures, q));
         items.nodes[items.n++] = n;
@@ -100,7 +100,7 @@ static figure_id damage_at_end(struct tree *t, size_t k, const struct items *pla
         const struct damage_item *item = ROW(struct damage_item, o->damage, i);
         if (!counts(b->figures, item) || !is_timed(item))
             continue;
-        nodes[n] = compile_quantity(b, item_quantity(item));
+        nodes[n] = compile_drawn(b, item->is, item->varies);
         compiled_add(b, PROPERTY_DAMAGE, key,
                      arena_printf(t->arena, "%s.at.%s", o->damage.keys[i], path), nodes[n],
                      item->source, quantity_reads(b->figures, item_quantity(item)));

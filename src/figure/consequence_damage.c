@@ -65,9 +65,9 @@ static node_id item_node(struct counting *c, size_t k, size_t i, size_t e)
         return counting_node(c, id);
     if (is_timed(item))
         c->b.clearance = clearance_at(c, e);
-    return counting_node(c,
-                         compiled_add(&c->b, PROPERTY_DAMAGE, key, name, compile_quantity(&c->b, q),
-                                      item->source, quantity_reads(c->f, q)));
+    return counting_node(c, compiled_add(&c->b, PROPERTY_DAMAGE, key, name,
+                                         compile_drawn(&c->b, item->is, item->varies), item->source,
+                                         quantity_reads(c->f, q)));
 }
 
 /* The items of an outcome that count, at one end; NODE_NONE where none does. */

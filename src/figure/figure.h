@@ -256,6 +256,7 @@ struct figures {
     struct graph *graph;
     struct eval *eval;
     struct means *means;
+    const struct mean_source *source;
     bool points_only; /* figures are values at the means of what is unknown, not means: for who
                          compares two ways to the same value */
     ARRAY(struct figure) list;
@@ -269,9 +270,9 @@ struct figures {
     struct strmap groups;          /* element -> struct groups: its common causes in the base */
     size_t n_indexed;              /* common causes of the base that are in `groups` */
     ARRAY(const struct quantity *) inputs;
-    ARRAY(const char *)
-    input_names;                  /* "VH-51A#0", "H-1/frequency#0": the same
-                                                   under all variants */
+    ARRAY(bool) input_varies; /* from one occurrence to the next, rather than being unknown */
+    /* "VH-51A#0", "H-1/frequency#0": the same under all variants */
+    ARRAY(const char *) input_names;
     ARRAY(figure_id) of_node;     /* first figure of a node */
     ARRAY(const char *) literals; /* text of a CONST node, or NULL */
     const struct diagram *itself; /* of one variable: true when it is */

@@ -60,6 +60,25 @@ static const char *input_name(void *ctx, uint32_t input)
     return f->input_names.at[input];
 }
 
+static double input_dist(void *ctx, uint32_t input, struct dist *dist)
+{
+    const struct figures *f = ctx;
+    *dist = quantity_dist(f->inputs.at[input]);
+    return f->inputs.at[input]->times;
+}
+
+static bool input_varies(void *ctx, uint32_t input)
+{
+    const struct figures *f = ctx;
+    return f->input_varies.at[input];
+}
+
+static const struct mean_source source_rules = {.quantile = input_quantile,
+                                                .atoms = input_atoms,
+                                                .name = input_name,
+                                                .dist = input_dist,
+                                                .varies = input_varies};
+
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
                          day date, struct figures **out, ohmen_error *e)
 {
@@ -71,7 +90,9 @@ ohmen_status figures_new(struct arena *a, const struct model *base, const char *
     f->graph = graph_new(a);
     f->eval = eval_new(a, f->graph);
     struct mean_source *source = NEW(a, struct mean_source);
-    *source = (struct mean_source){f, input_quantile, input_atoms, input_name};
+    *source = source_rules;
+    source->ctx = f;
+    f->source = source;
     f->means = means_new(a, f->eval, source);
     const char *wanted = perspective ? perspective : base->settings->perspective;
     if (wanted && !text_equal(wanted, "all")) {

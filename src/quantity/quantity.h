@@ -19,6 +19,7 @@
 #define QUANTITY_QUANTITY_H
 
 #include "base/error.h"
+#include "math/dist.h"
 #include "quantity/expr.h"
 
 enum shape {
@@ -119,6 +120,8 @@ void quantity_range(const struct quantity *q, double *low, double *high);
 double quantity_mean(const struct quantity *q);
 double quantity_variance(const struct quantity *q);
 ohmen_status quantity_quantile(const struct quantity *q, double p, double *out, ohmen_error *e);
+/* The distribution itself, without `times`; its arrays are those of q. Not for SHAPE_EXPRESSION. */
+struct dist quantity_dist(const struct quantity *q);
 /* The same with q = 1 - p, the smaller of the two exact, as in dist_quantile. */
 ohmen_status quantity_tail(const struct quantity *x, double p, double q, double *out,
                            ohmen_error *e);

@@ -19,7 +19,7 @@ static const enum dist_shape dist_shapes[SHAPE_COUNT] = {
     [SHAPE_COUNTED] = DIST_COUNTED,
 };
 
-static struct dist dist_of(const struct quantity *q)
+struct dist quantity_dist(const struct quantity *q)
 {
     assert(q->shape != SHAPE_EXPRESSION);
     return (struct dist){.shape = dist_shapes[q->shape], .p = {q->p[0], q->p[1], q->p[2], q->p[3]},
@@ -28,20 +28,20 @@ static struct dist dist_of(const struct quantity *q)
 
 double quantity_mean(const struct quantity *q)
 {
-    struct dist d = dist_of(q);
+    struct dist d = quantity_dist(q);
     return q->times * dist_mean(&d);
 }
 
 double quantity_variance(const struct quantity *q)
 {
-    struct dist d = dist_of(q);
+    struct dist d = quantity_dist(q);
     return q->times == 0 ? 0 : q->times * q->times * dist_variance(&d);
 }
 
 ohmen_status quantity_tail(const struct quantity *x, double p, double q, double *out,
                            ohmen_error *e)
 {
-    struct dist d = dist_of(x);
+    struct dist d = quantity_dist(x);
     bool mirrored = x->times < 0; /* the p quantile is then that of 1 - p */
     double at = mirrored ? dist_quantile(&d, q, p) : dist_quantile(&d, p, q);
     char text[32];
