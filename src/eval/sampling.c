@@ -259,7 +259,7 @@ static bool is_precise(const struct run *r, size_t sets)
     const struct sampling_plan *p = &r->s->plan;
     double greatest = 0, error = 0;
     for (size_t k = 0; k < p->n_judged && k < r->n_roots; k++) {
-        struct estimate mean = statistics_mean(sets, r->points, r->values[k]);
+        struct sampled mean = statistics_mean(sets, r->points, r->values[k]);
         greatest = fmax(greatest, fabs(mean.value));
         error = fmax(error, mean.error);
     }

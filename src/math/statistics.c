@@ -15,7 +15,7 @@ static double error_of(size_t sets, double squares)
     return sqrt(squares / (double)sets / (double)(sets - 1));
 }
 
-struct estimate statistics_of_sets(size_t sets, const double *mean)
+struct sampled statistics_of_sets(size_t sets, const double *mean)
 {
     double sum = 0, squares = 0;
     for (size_t s = 0; s < sets; s++)
@@ -23,7 +23,7 @@ struct estimate statistics_of_sets(size_t sets, const double *mean)
     double all = sum / (double)sets;
     for (size_t s = 0; s < sets; s++)
         squares += (mean[s] - all) * (mean[s] - all);
-    return (struct estimate){all, error_of(sets, squares)};
+    return (struct sampled){all, error_of(sets, squares)};
 }
 
 static double mean_of_set(size_t points, const double *x)
@@ -34,7 +34,7 @@ static double mean_of_set(size_t points, const double *x)
     return sum / (double)points;
 }
 
-struct estimate statistics_mean(size_t sets, size_t points, const double *x)
+struct sampled statistics_mean(size_t sets, size_t points, const double *x)
 {
     double sum = 0, squares = 0;
     for (size_t s = 0; s < sets; s++)
@@ -44,7 +44,7 @@ struct estimate statistics_mean(size_t sets, size_t points, const double *x)
         double away = mean_of_set(points, x + s * points) - all;
         squares += away * away;
     }
-    return (struct estimate){all, error_of(sets, squares)};
+    return (struct sampled){all, error_of(sets, squares)};
 }
 
 /* ---- quantiles ---- */
@@ -74,13 +74,13 @@ static double quantile_of(size_t n, const double *rising, double p)
 }
 
 void statistics_quantiles(struct arena *a, size_t sets, size_t points, const double *x, size_t n,
-                          const double *p, struct estimate *out)
+                          const double *p, struct sampled *out)
 {
     struct arena *scratch = arena_child(a);
     double *at = NEW_ARRAY(scratch, sets * points, double);
     sorted(at, sets * points, x);
     for (size_t k = 0; k < n; k++)
-        out[k] = (struct estimate){quantile_of(sets * points, at, p[k]), 0};
+        out[k] = (struct sampled){quantile_of(sets * points, at, p[k]), 0};
     for (size_t s = 0; s < sets; s++) {
         sorted(at, points, x + s * points);
         for (size_t k = 0; k < n; k++) {

@@ -12,21 +12,21 @@
 
 #include "base/arena.h"
 
-struct estimate {
+struct sampled {
     double value, error; /* its standard error */
 };
 
 /* The mean; its error is that of the means of the sets: sqrt(sum (m_s - m)^2 / (S (S - 1))). */
-struct estimate statistics_mean(size_t sets, size_t points, const double *x);
+struct sampled statistics_mean(size_t sets, size_t points, const double *x);
 /* The mean of the means of S sets, given themselves. */
-struct estimate statistics_of_sets(size_t sets, const double *mean);
+struct sampled statistics_of_sets(size_t sets, const double *mean);
 
 /* Quantiles at n probabilities, 0 < p < 1: the order statistics of all values together, between
  * two of which it is linear (of N values the k-th from 0 stands at (k + 1/2) / N). The error is by
  * sectioning: sqrt(sum (q_s - q)^2 / (S (S - 1))), q_s those of the sets alone, q that of all
  * (Asmussen & Glynn, Stochastic Simulation (2007), III.5, from memory). Scratch of `a`. */
 void statistics_quantiles(struct arena *a, size_t sets, size_t points, const double *x, size_t n,
-                          const double *p, struct estimate *out);
+                          const double *p, struct sampled *out);
 
 /* Spearman's rank correlation of two samples of n values, equal values having their mean rank
  * (Kendall & Gibbons, Rank Correlation Methods, 5th ed. 1990, ch. 3); 0 where all values of one

@@ -1,0 +1,178 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Samples of figures (samples.h): from figures to nodes and back to names. Owns nothing beyond the
+ * arenas it is given. */
+#include "figure/samples.h"
+
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+const double spread_probability[SPREAD_POINTS] = {0.05, 0.5, 0.95};
+static const char *const point_words[SPREAD_POINTS] = {"[p5]", "[p50]", "[p95]"};
+
+/* ---- samples ---- */
+
+static ohmen_status not_finite(struct figures *f, size_t n, const figure_id *ids, node_id culprit,
+                               ohmen_error *e)
+{
+    size_t k = 0;
+    while (k + 1 < n && figure_at(f, ids[k])->node != culprit)
+        k++;
+    return error_set(e, OHMEN_COMPUTE,
+                     "%s is not a finite number for some of what its inputs may be: look for a "
+                     "division by something that may be zero",
+                     figure_name(f, f->arena, ids[k]));
+}
+
+static ohmen_status sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                           size_t n, const node_id *nodes, struct sampling *out, node_id *culprit,
+                           ohmen_error *e)
+{
+    struct sampler *s;
+    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, e);
+    return status == OHMEN_OK ? sampler_run(a, s, n, nodes, out, culprit, e) : status;
+}
+
+ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                            size_t n, const figure_id *ids, struct sampling *out, ohmen_error *e)
+{
+    node_id culprit = NODE_NONE, *nodes = NEW_ARRAY(a, n, node_id);
+    ohmen_error inner = OHMEN_ERROR_INIT;
+    for (size_t k = 0; k < n; k++)
+        nodes[k] = figure_at(f, ids[k])->node;
+    ohmen_status status = sample(f, a, p, n, nodes, out, &culprit, &inner);
+    if (status == OHMEN_COMPUTE && culprit != NODE_NONE)
+        return not_finite(f, n, ids, culprit, e);
+    return status == OHMEN_OK ? OHMEN_OK : error_set(e, status, "%s", inner.text);
+}
+
+/* ---- spreads ---- */
+
+static bool is_unknown(const struct figures *f, node_id n)
+{
+    size_t count;
+    const uint32_t *inputs = graph_uncertain(f->graph, n, &count);
+    for (size_t i = 0; i < count; i++)
+        if (!f->input_varies.at[inputs[i]])
+            return true;
+    return false;
+}
+
+static struct figure_spread certain_spread(double x)
+{
+    struct figure_spread s = {.mean = {x, 0}, .is_certain = true};
+    for (int k = 0; k < SPREAD_POINTS; k++)
+        s.at[k] = (struct sampled){x, 0};
+    return s;
+}
+
+struct figure_spread figure_spread_of(const struct figures *f, struct arena *a,
+                                      const struct sampling *s, size_t k, figure_id id)
+{
+    struct figure_spread x = {0};
+    if (!is_unknown(f, figure_at(f, id)->node))
+        return certain_spread(figure_value(f, id));
+    x.mean = statistics_mean(s->sets, s->points, s->values[k]);
+    statistics_quantiles(a, s->sets, s->points, s->values[k], SPREAD_POINTS, spread_probability,
+                         x.at);
+    return x;
+}
+
+/* ---- names ---- */
+
+/* "@[p5]" is a change that was made up, and no point. */
+bool spread_is_named(struct arena *a, const char *name, const char **figure, enum spread_point *at)
+{
+    size_t n = strlen(name);
+    for (int k = 0; k < SPREAD_POINTS; k++) {
+        size_t word = strlen(point_words[k]);
+        if (n <= word || !text_equal(name + n - word, point_words[k]))
+            continue;
+        char before = name[n - word - 1];
+        if (before == '@' || before == '+')
+            continue;
+        *figure = arena_strn(a, name, n - word);
+        *at = (enum spread_point)k;
+        return true;
+    }
+    return false;
+}
+
+const char *spread_name(const struct figures *f, struct arena *a, figure_id id,
+                        enum spread_point at)
+{
+    return arena_printf(a, "%s%s", figure_name(f, a, id), point_words[at]);
+}
+
+/* ---- ranks ---- */
+
+static int by_size(const void *p, const void *q)
+{
+    const struct rank_input *a = p, *b = q;
+    if (fabs(a->correlation) != fabs(b->correlation))
+        return fabs(a->correlation) > fabs(b->correlation) ? -1 : 1;
+    int order = text_compare(a->name, b->name);
+    return order ? order : (a->input > b->input) - (a->input < b->input);
+}
+
+/* The INPUT node of an input: the first one. */
+static node_id input_node(const struct graph *g, node_id below, uint32_t input)
+{
+    for (node_id n = 0; n <= below; n++)
+        if (graph_at(g, n)->op == OP_INPUT && graph_at(g, n)->extra == input)
+            return n;
+    return NODE_NONE;
+}
+
+/* The unknown inputs below a node, and a node of each. */
+static size_t unknown_below(struct figures *f, struct arena *a, node_id below, uint32_t **inputs,
+                            node_id **nodes)
+{
+    size_t count, n = 0;
+    const uint32_t *all = graph_uncertain(f->graph, below, &count);
+    *inputs = NEW_ARRAY(a, count, uint32_t);
+    *nodes = NEW_ARRAY(a, count, node_id);
+    for (size_t i = 0; i < count; i++) {
+        if (f->input_varies.at[all[i]])
+            continue;
+        (*inputs)[n] = all[i];
+        (*nodes)[n++] = input_node(f->graph, below, all[i]);
+    }
+    return n;
+}
+
+/* The same unknown under several variants has several inputs of one name, with the same ranks. */
+static bool is_listed(const struct rank_inputs *all, const char *name)
+{
+    for (size_t i = 0; i < all->n; i++)
+        if (text_equal(all->at[i].name, name))
+            return true;
+    return false;
+}
+
+ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                          node_id below, const double *values, size_t sets, double least,
+                          struct rank_inputs *out, ohmen_error *e)
+{
+    struct arena *scratch = arena_child(a);
+    struct sampling_plan plan = *p;
+    struct sampling drawn;
+    uint32_t *inputs;
+    node_id *nodes;
+    size_t n = unknown_below(f, scratch, below, &inputs, &nodes);
+    plan.most_batches = sets / SAMPLING_BATCH;
+    plan.precision = 0;
+    plan.watch = NULL;
+    ohmen_status status = sample(f, scratch, &plan, n, nodes, &drawn, NULL, e);
+    for (size_t i = 0; status == OHMEN_OK && i < n; i++) {
+        const char *name = f->input_names.at[inputs[i]];
+        double r =
+            statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
+        if (fabs(r) >= least && !is_listed(out, name))
+            *array_push(a, out) = (struct rank_input){inputs[i], name, r};
+    }
+    if (out->n > 1)
+        qsort(out->at, out->n, sizeof *out->at, by_size);
+    arena_free(scratch);
+    return status;
+}
