@@ -1,0 +1,109 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What a tape is made of, inside src/eval (tape.h).
+ *
+ * A step names what it reads and writes by *rows*. The rows of a run are, in this order: the slots,
+ * the inputs, the roots, and the constants, of which each is one double and not a row of lanes.
+ * While a tape is made, values are numbered instead: inputs first, then what steps make, and
+ * constants with TAPE_CONSTANT added.
+ *
+ * Invariant: kernels are run over whole groups of TAPE_GROUP lanes; what a call has more or less
+ * than that is done in rows of the work space. A step reads a lane of all its arguments before it
+ * writes that lane, so that a result may take the row of an argument. */
+#ifndef EVAL_TAPE_PARTS_H
+#define EVAL_TAPE_PARTS_H
+
+#include "eval/state.h"
+#include "eval/tape.h"
+
+enum { TAPE_GROUP = 64 };
+#define TAPE_CONSTANT 0x80000000u
+#define TAPE_NONE UINT32_MAX
+
+struct tape_step;
+/* n is a multiple of TAPE_GROUP; w->count of these lanes are asked for. */
+typedef void tape_kernel(const struct tape_step *s, struct tape_work *w, size_t n);
+
+/* Rows that are read, and written. */
+struct tape_rows ARRAY_BODY(uint32_t);
+
+struct tape_step {
+    tape_kernel *run;
+    node_id node;            /* the operation, the last where there are several */
+    uint32_t first_constant; /* rows from here on are constants */
+    struct tape_rows args, to;
+    struct tape_rows picks; /* DIAGRAM: which results go to each of `to` */
+    uint32_t operations;    /* of the graph that it stands for */
+    uint32_t room;          /* which of tape_work's rooms is its own, or TAPE_NONE */
+    const void *more;       /* the kernel's own */
+};
+
+struct tape {
+    struct arena *arena;
+    const struct graph *g;
+    enum isa isa;
+    size_t n_in, n_roots, n_slots, n_rooms, most_args, most_work;
+    ARRAY(struct tape_step) steps;
+    ARRAY(double) constants;
+    struct tape_rows roots; /* the row of each; its own where a step writes into it */
+};
+
+struct tape_work {
+    const struct tape *tape;
+    size_t block, count;
+    double **row;           /* constants are only read */
+    double **slot, **spare; /* rows of slots; of inputs and roots for a broken group */
+    double *x;              /* scratch: arguments of one lane, and most_work more */
+    struct tape_average **averages;
+};
+
+static inline double tape_read(const struct tape_step *s, double *const *row, size_t i, size_t lane)
+{
+    uint32_t at = s->args.at[i];
+    return row[at][at < s->first_constant ? lane : 0];
+}
+
+/* Lane by lane, by the point rule of the op table: for any operation but DIAGRAM and PICK. */
+tape_kernel tape_by_point;
+/* A diagram lane by lane; args: p, then q of each of its variables; TAPE_NONE: 1 - p. */
+tape_kernel tape_diagram_by_point;
+
+/* A DIAGRAM over windows (tape_average.c): adds to the step what it reads. `operand` gives the
+ * value of a node. */
+struct tape_average;
+struct tape_maker;
+void tape_average_begin(struct tape_maker *m, struct tape_step *s, node_id n);
+struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s);
+tape_kernel tape_average_run;
+
+/* ---- making ---- */
+
+/* A node that was reached from the roots. */
+struct tape_reached {
+    node_id node;
+    uint32_t operand; /* value or constant; TAPE_NONE: not yet known */
+    uint32_t step;    /* DIAGRAM: the step that makes it */
+    bool moves, is_needed;
+};
+
+struct tape_maker {
+    struct arena *arena; /* scratch */
+    struct tape *tape;
+    struct eval *v;
+    const struct tape_inputs *in;
+    uint64_t *met; /* a bit for each node of the graph */
+    ARRAY(node_id) open;
+    ARRAY(struct tape_reached) reached; /* in the order of numbers */
+    uint32_t n_values;
+    struct tape_rows roots; /* values */
+};
+
+struct tape_reached *tape_find(const struct tape_maker *m, node_id n);
+uint32_t tape_constant(struct tape_maker *m, double x);
+/* The value of a node that was reached, or a constant. */
+uint32_t tape_operand(struct tape_maker *m, node_id n);
+bool tape_is_given(const struct tape_maker *m, node_id n);
+
+/* Gives each value its row (tape_slots.c). */
+void tape_place(struct tape_maker *m);
+
+#endif

@@ -1,0 +1,173 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Tapes: every operation, for every instruction set, lane by lane the bits of the point rules. */
+#include "tape_test.h"
+
+#include "failmem.h"
+
+#include <math.h>
+#include <stdlib.h>
+
+static struct arena *arena;
+
+static void setup(void)
+{
+    arena = arena_new(NULL);
+}
+
+static void teardown(void)
+{
+    arena_free(arena);
+}
+
+/* Diagrams over windows take their time. */
+static size_t lanes_of(enum graph_op op)
+{
+    return op == OP_COURSE ? 65 : TAPE_MOST_LANES;
+}
+
+static void check_op(enum graph_op op, uint64_t seed)
+{
+    struct tape_world w;
+    tape_world_open(&w, arena, seed);
+    node_id roots[8];
+    for (int i = 0; i < 8; i++)
+        roots[i] = tape_world_add(&w, op);
+    struct tape_lanes values = tape_lanes_draw(&w, lanes_of(op), TAPE_INPUTS);
+    EACH_ISA(isa)
+    tape_check(&w, isa, &tape_all_inputs, 8, roots, &values, 0);
+}
+
+START_TEST(every_operation)
+{
+    for (enum graph_op op = 0; op < OP_COUNT; op++)
+        for (uint64_t seed = 0; seed < (op == OP_COURSE ? 2 : 6); seed++)
+            check_op(op, 100 * seed + op);
+}
+END_TEST
+
+/* ---- graphs ---- */
+
+static enum graph_op draw_op(struct tape_world *w)
+{
+    for (;;) {
+        enum graph_op op = (enum graph_op)random_index(&w->r, OP_COUNT);
+        if (op != OP_COURSE || random_index(&w->r, 20) == 0)
+            return op;
+    }
+}
+
+static void draw_roots(struct tape_world *w, size_t n, node_id *roots)
+{
+    for (size_t k = 0; k < n; k++)
+        roots[k] = w->pool.at[random_index(&w->r, w->pool.n)];
+    roots[n - 1] = roots[0];
+}
+
+static void draw_graph(struct tape_world *w, uint64_t seed, size_t n)
+{
+    tape_world_open(w, arena, seed);
+    for (size_t i = 0; i < n; i++)
+        tape_world_add(w, draw_op(w));
+}
+
+START_TEST(random_graphs)
+{
+    static const size_t blocks[] = {0, 1, 64, 65, 200, 512, 1000};
+    for (uint64_t seed = 0; seed < 60; seed++) {
+        struct tape_world w;
+        node_id roots[7];
+        draw_graph(&w, 1000 + seed, 30);
+        draw_roots(&w, 7, roots);
+        struct tape_lanes values = tape_lanes_draw(&w, seed % 10 ? 130 : 1000, TAPE_INPUTS);
+        EACH_ISA(isa)
+        tape_check(&w, isa, &tape_all_inputs, 7, roots, &values, random_pick(&w.r, blocks));
+    }
+}
+END_TEST
+
+static int by_number(const void *a, const void *b)
+{
+    return (*(const node_id *)a > *(const node_id *)b) -
+           (*(const node_id *)a < *(const node_id *)b);
+}
+
+/* Nodes whose operation may be replaced, that rise; inputs of these graphs are found by number. */
+static size_t draw_given(struct tape_world *w, node_id *given)
+{
+    size_t n = 0;
+    for (int i = 0; i < 3; i++) {
+        node_id one = w->pool.at[TAPE_INPUTS + random_index(&w->r, w->pool.n - TAPE_INPUTS)];
+        enum graph_op op = graph_at(w->g, one)->op;
+        bool is_new = op != OP_INPUT && op != OP_PICK && op != OP_CONST;
+        for (size_t k = 0; k < n; k++)
+            is_new = is_new && given[k] != one;
+        if (is_new)
+            given[n++] = one;
+    }
+    qsort(given, n, sizeof *given, by_number);
+    return n;
+}
+
+START_TEST(given_nodes_and_few_inputs)
+{
+    static const uint32_t two[] = {1, 3};
+    for (uint64_t seed = 0; seed < 40; seed++) {
+        struct tape_world w;
+        node_id roots[7], given[3];
+        draw_graph(&w, 5000 + seed, 30);
+        draw_roots(&w, 7, roots);
+        size_t n = draw_given(&w, given);
+        struct tape_inputs in = {2, two, n, given};
+        struct tape_lanes values = tape_lanes_draw(&w, 65, 2 + n);
+        EACH_ISA(isa)
+        tape_check(&w, isa, &in, 7, roots, &values, 0);
+    }
+}
+END_TEST
+
+/* ---- memory ---- */
+
+START_TEST(running_allocates_nothing)
+{
+    struct failmem f;
+    failmem_init(&f, FAILMEM_NEVER);
+    struct arena *outer = arena;
+    arena = arena_new(&f.mem);
+    for (uint64_t seed = 0; seed < 20; seed++) {
+        struct tape_world w;
+        node_id roots[7];
+        draw_graph(&w, 9000 + seed, 20);
+        draw_roots(&w, 7, roots);
+        struct tape_lanes values = tape_lanes_draw(&w, 100, TAPE_INPUTS);
+        struct tape *t = tape_new(arena, w.v, isa_best(), &tape_all_inputs, 7, roots);
+        struct tape_work *work = tape_work_new(arena, t, 100);
+        double *out[7];
+        for (size_t k = 0; k < 7; k++)
+            out[k] = NEW_ARRAY(arena, 100, double);
+        size_t before = f.allocations;
+        tape_run(t, work, 100, (const double *const *)values.in, out);
+        ck_assert_uint_eq(f.allocations, before);
+    }
+    arena_free(arena);
+    arena = outer;
+    failmem_check(&f);
+}
+END_TEST
+
+int main(void)
+{
+    Suite *s = suite_create("tapes");
+    TCase *t = tcase_create("tapes");
+    tcase_set_timeout(t, 300);
+    tcase_add_checked_fixture(t, setup, teardown);
+    tcase_add_test(t, every_operation);
+    tcase_add_test(t, random_graphs);
+    tcase_add_test(t, given_nodes_and_few_inputs);
+    tcase_add_test(t, running_allocates_nothing);
+    suite_add_tcase(s, t);
+    SRunner *runner = srunner_create(s);
+    srunner_run_all(runner, CK_NORMAL);
+    int failed = srunner_ntests_failed(runner);
+    srunner_free(runner);
+    return failed != 0;
+}
