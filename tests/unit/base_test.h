@@ -13,5 +13,6 @@ Suite *suite_utf8(void);
 Suite *suite_diag(void);
 Suite *suite_file(void);
 Suite *suite_parallel(void);
+Suite *suite_isa(void);
 
 #endif
