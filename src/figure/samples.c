@@ -115,28 +115,24 @@ static int by_size(const void *p, const void *q)
     return order ? order : (a->input > b->input) - (a->input < b->input);
 }
 
-/* The INPUT node of an input: the first one. */
-static node_id input_node(const struct graph *g, node_id below, uint32_t input)
+/* A node of each unknown input below some nodes, in the order of their numbers. */
+static size_t unknown_below(struct figures *f, struct arena *a, size_t n_below,
+                            const node_id *below, node_id **out)
 {
-    for (node_id n = 0; n <= below; n++)
-        if (graph_at(g, n)->op == OP_INPUT && graph_at(g, n)->extra == input)
-            return n;
-    return NODE_NONE;
-}
-
-/* The unknown inputs below a node, and a node of each. */
-static size_t unknown_below(struct figures *f, struct arena *a, node_id below, uint32_t **inputs,
-                            node_id **nodes)
-{
+    bool *is_wanted = NEW_ARRAY(a, f->inputs.n, bool);
     size_t count, n = 0;
-    const uint32_t *all = graph_uncertain(f->graph, below, &count);
-    *inputs = NEW_ARRAY(a, count, uint32_t);
-    *nodes = NEW_ARRAY(a, count, node_id);
-    for (size_t i = 0; i < count; i++) {
-        if (f->input_varies.at[all[i]])
+    for (size_t k = 0; k < n_below; k++) {
+        const uint32_t *inputs = graph_uncertain(f->graph, below[k], &count);
+        for (size_t i = 0; i < count; i++)
+            is_wanted[inputs[i]] = !f->input_varies.at[inputs[i]];
+    }
+    node_id *nodes = *out = NEW_ARRAY(a, f->inputs.n, node_id);
+    for (node_id i = 0; i < graph_size(f->graph); i++) {
+        const struct graph_node *node = graph_at(f->graph, i);
+        if (node->op != OP_INPUT || !is_wanted[node->extra])
             continue;
-        (*inputs)[n] = all[i];
-        (*nodes)[n++] = input_node(f->graph, below, all[i]);
+        is_wanted[node->extra] = false;
+        nodes[n++] = i;
     }
     return n;
 }
@@ -151,25 +147,25 @@ static bool is_listed(const struct rank_inputs *all, const char *name)
 }
 
 ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          node_id below, const double *values, size_t sets, double least,
-                          struct rank_inputs *out, ohmen_error *e)
+                          size_t n_below, const node_id *below, const double *values, size_t sets,
+                          double least, struct rank_inputs *out, ohmen_error *e)
 {
     struct arena *scratch = arena_child(a);
     struct sampling_plan plan = *p;
     struct sampling drawn;
-    uint32_t *inputs;
     node_id *nodes;
-    size_t n = unknown_below(f, scratch, below, &inputs, &nodes);
+    size_t n = unknown_below(f, scratch, n_below, below, &nodes);
     plan.most_batches = sets / SAMPLING_BATCH;
     plan.precision = 0;
     plan.watch = NULL;
     ohmen_status status = sample(f, scratch, &plan, n, nodes, &drawn, NULL, e);
     for (size_t i = 0; status == OHMEN_OK && i < n; i++) {
-        const char *name = f->input_names.at[inputs[i]];
+        uint32_t input = graph_at(f->graph, nodes[i])->extra;
+        const char *name = f->input_names.at[input];
         double r =
             statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
         if (fabs(r) >= least && !is_listed(out, name))
-            *array_push(a, out) = (struct rank_input){inputs[i], name, r};
+            *array_push(a, out) = (struct rank_input){input, name, r};
     }
     if (out->n > 1)
         qsort(out->at, out->n, sizeof *out->at, by_size);

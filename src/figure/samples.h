@@ -21,7 +21,7 @@ extern const double spread_probability[SPREAD_POINTS];
 struct figure_spread {
     struct sampled at[SPREAD_POINTS];
     struct sampled mean; /* of the sample */
-    bool is_certain;      /* nothing unknown is in it */
+    bool is_certain;     /* nothing unknown is in it */
 };
 
 /* Values of n figures in the same samples; figures_evaluate has been called. Lives in `a`.
@@ -47,11 +47,11 @@ struct rank_input {
 };
 struct rank_inputs ARRAY_BODY(struct rank_input);
 
-/* Of the inputs below `of` (a figure in the sample, at place k) those that move with it, by the
- * size of Spearman's rank correlation, ties by name; correlations that are smaller than
- * `least` are left out. The inputs are drawn once more. Lives in `a`. */
+/* Of the unknown inputs below some nodes those that move with `values`, which come from as many sets
+ * of a sample by the same plan: by the size of Spearman's rank correlation, ties by name;
+ * correlations smaller than `least` are left out. The inputs are drawn once more. Lives in `a`. */
 ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          node_id below, const double *values, size_t sets, double least,
-                          struct rank_inputs *out, ohmen_error *e);
+                          size_t n_below, const node_id *below, const double *values, size_t sets,
+                          double least, struct rank_inputs *out, ohmen_error *e);
 
 #endif
