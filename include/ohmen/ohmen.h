@@ -60,6 +60,11 @@ void ohmen_close(ohmen_register *r);
 typedef void ohmen_progress(void *ctx, const char *phase, size_t done, size_t total);
 void ohmen_watch(ohmen_register *r, ohmen_progress *progress, void *ctx);
 
+/* Asked between batches of samples (phase "sampling"): true ends the sampling there, at least one
+ * batch being taken; the report then says how many. Must not call the library. */
+typedef bool ohmen_stop(void *ctx);
+void ohmen_stop_when(ohmen_register *r, ohmen_stop *stop, void *ctx);
+
 /* --- reports --- */
 
 typedef struct ohmen_report ohmen_report;
@@ -109,6 +114,21 @@ typedef struct ohmen_query {
     const char *sort;         /* the field by which rows are ordered, those without it last, then
                                  by id; NULL: by id, hazards by rank */
     bool reverse;             /* from the greatest to the least; needs sort (OHMEN_USAGE) */
+
+    /* Of samples over all that is unknown: ohmen_weigh, _memo, _sensitivity, _report_all, and
+     * ohmen_explain where the figure comes from a sample. */
+    unsigned samples;      /* values of each figure, in 16 independent sets at least: a power of 2
+                              from 256 to 1048576, others are rounded up; 0: 1024 */
+    const char *precision; /* "0.5 %": stop as soon as the standard errors of the means of the worths
+                              are at most that part of the greatest of them; `samples` is the most
+                              then (0: 65536). NULL: all samples. OHMEN_USAGE for what is no part
+                              between 0 and 1 */
+    unsigned seed;         /* another seed, other samples; 0: 1 */
+    unsigned threads;      /* at most 64; 0: one for each processor. The same figures for any */
+    const char *kernels;   /* the instructions to compute with, "plain", "wide" or "widest"; the
+                              same figures for all. NULL: the last of these that this processor
+                              has. OHMEN_USAGE for others, or those that it has not */
+    unsigned block;        /* samples that are computed at a time, for tests; 0: what suits */
 } ohmen_query;
 ohmen_query ohmen_query_defaults(void);
 

@@ -54,13 +54,13 @@ static void read_number(struct reader *r, enum option_id id, const char *text)
 {
     const struct option *o = &options[id];
     size_t digits = strspn(text, "0123456789");
-    unsigned number = 0;
+    uint64_t number = 0;
     for (size_t i = 0; i < digits && number <= o->high; i++)
         number = number * 10 + (unsigned)(text[i] - '0');
     if (digits == 0 || text[digits] || number < o->low || number > o->high)
         message_set(r->e, OHMEN_USAGE, "--%s needs a whole number from %u to %u, not '%s'", o->name,
                     o->low, o->high, text);
-    r->out->number[id] = number;
+    r->out->number[id] = (unsigned)number;
 }
 
 static void read_word(struct reader *r, enum option_id id, const char *text)

@@ -21,6 +21,9 @@ const char *const command_jobs[JOB_COUNT] = {
 #define READING (ON_REGISTER | FORM | WHEN_AND_WHOSE)
 #define CHOOSING (OPTION_BIT(OPTION_WHERE) | OPTION_BIT(OPTION_SORT) | OPTION_BIT(OPTION_REVERSE))
 #define READING_HAZARDS (READING | OPTION_BIT(OPTION_SITE))
+#define SAMPLING                                                                                   \
+    (OPTION_BIT(OPTION_SAMPLES) | OPTION_BIT(OPTION_PRECISION) | OPTION_BIT(OPTION_SEED) |         \
+     OPTION_BIT(OPTION_THREADS) | OPTION_BIT(OPTION_KERNELS))
 
 const struct command commands[] = {
     {"new",
@@ -159,7 +162,7 @@ const struct command commands[] = {
     {"report",
      JOB_RISK,
      {0},
-     .options = READING_HAZARDS,
+     .options = READING_HAZARDS | SAMPLING,
      .brief = "the whole register as one document",
      .text = "Prints the whole register as one document.",
      .example = "ohmen -r skerry.ohmen report --width 80",
@@ -167,7 +170,7 @@ const struct command commands[] = {
     {"weigh",
      JOB_DECIDE,
      {"DECISION", 1, 1, "the decision, such as D-VH-BUS"},
-     .options = READING,
+     .options = READING | SAMPLING,
      .brief = "the options of a decision against doing nothing",
      .text = "Weighs the options of a decision, and their combinations, against doing nothing, "
              "over every hazard that one of them reaches.",
@@ -176,7 +179,7 @@ const struct command commands[] = {
     {"memo",
      JOB_DECIDE,
      {"DECISION", 1, 1, "the decision, such as D-TQ"},
-     .options = READING,
+     .options = READING | SAMPLING,
      .brief = "one decision as a document to be signed",
      .text = "Prints what is asked, what is recommended, what it costs, what it avoids and for "
              "whom, how often it ends badly, what it rests on with its sources, what would turn "
@@ -199,7 +202,7 @@ const struct command commands[] = {
     {"explain",
      JOB_PROVE,
      {"FIGURE", 1, 1, "the name of a figure, such as H-VH-BUS1.risk"},
-     .options = READING | OPTION_BIT(OPTION_DEPTH),
+     .options = READING | SAMPLING | OPTION_BIT(OPTION_DEPTH),
      .brief = "the derivation of a figure, down to its sources",
      .text = "Takes one figure apart, formula by formula, down to inputs with their sources. "
              "Figures carry their names in the output of --json.",

@@ -6,6 +6,8 @@
 
 static const char *const colour_words[] = {"always", "never", "auto", 0};
 
+static const char *const kernel_words[] = {"plain", "wide", "widest", 0};
+
 const struct option options[OPTION_COUNT] = {
     [OPTION_HELP] = {"help", 'h', .help = "print the help text of the tool or of a command"},
     [OPTION_VERSION] = {"version", .help = "print the version"},
@@ -66,6 +68,23 @@ const struct option options[OPTION_COUNT] = {
                            "made if there is none; both files, or neither"},
     [OPTION_DEPTH] = {"depth", 0, VALUE_NUMBER, "N", 1, 1000,
                       .help = "go down N levels; all levels if left out"},
+    [OPTION_SAMPLES] = {"samples", 0, VALUE_NUMBER, "N", 256, 1048576,
+                        .help = "values of each figure that are drawn over all that is unknown, "
+                                "rounded up to a power of 2; 1024 if left out (with --precision: "
+                                "65536 at the most)"},
+    [OPTION_PRECISION] = {"precision", 0, VALUE_TEXT, "PART",
+                          .help = "draw samples until the standard errors of the mean worths are "
+                                  "at most this part of the greatest of them, such as '0.5 %'"},
+    [OPTION_SEED] = {"seed", 0, VALUE_NUMBER, "N", 1, 4294967295,
+                     .help = "another seed, other samples; 1 if left out. The same seed gives the "
+                             "same figures"},
+    [OPTION_THREADS] = {"threads", 0, VALUE_NUMBER, "N", 1, 64,
+                        .help = "threads that samples are computed on; one for each processor if "
+                                "left out. The figures are the same for any number"},
+    [OPTION_KERNELS] = {"kernels", 0, VALUE_WORD, "SET", .words = kernel_words,
+                        .help = "instructions to compute samples with: plain, wide (AVX2) or "
+                                "widest (AVX-512); the last that the processor has if left out. "
+                                "The figures are the same for all"},
     [OPTION_MARKDOWN] = {"markdown", .help = "print docs/commands.md"},
     [OPTION_COMPLETION] = {"completion", .help = "print the completion for bash; use it by: "
                                                  "source <(ohmen help --completion)"},

@@ -23,6 +23,11 @@ ohmen_query reading_query(const struct args *args)
     query.n_where = args->repeated[OPTION_WHERE].n;
     query.sort = args->text[OPTION_SORT];
     query.reverse = args->given[OPTION_REVERSE];
+    query.samples = args->number[OPTION_SAMPLES];
+    query.precision = args->text[OPTION_PRECISION];
+    query.seed = args->number[OPTION_SEED];
+    query.threads = args->number[OPTION_THREADS];
+    query.kernels = args->text[OPTION_KERNELS];
     return query;
 }
 

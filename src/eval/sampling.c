@@ -291,6 +291,8 @@ static ohmen_status take_batches(struct run *r, const node_id *roots, struct sam
 {
     const struct sampling_plan *p = &r->s->plan;
     bool is_over = false;
+    if (p->watch)
+        p->watch(p->watch_ctx, 0, p->most_batches);
     while (!is_over) {
         ohmen_status status = take_batch(r, roots, culprit, e);
         if (status != OHMEN_OK)

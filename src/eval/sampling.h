@@ -38,7 +38,7 @@ struct sampling_plan {
     size_t threads; /* 1 .. PARALLEL_MOST */
     size_t block;   /* lanes at a time; 0: what suits the cache */
     enum isa isa;   /* that runs */
-    /* Asked after each batch: false ends it there. NULL: never. */
+    /* Told before the first batch, and asked after each: false ends it there. NULL: never. */
     bool (*watch)(void *ctx, size_t batches, size_t most);
     void *watch_ctx;
 };

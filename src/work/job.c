@@ -88,6 +88,12 @@ void ohmen_watch(ohmen_register *r, ohmen_progress *progress, void *ctx)
     r->progress_ctx = ctx;
 }
 
+void ohmen_stop_when(ohmen_register *r, ohmen_stop *stop, void *ctx)
+{
+    r->stop = stop;
+    r->stop_ctx = ctx;
+}
+
 void job_progress(const struct job *j, const char *phase, size_t done, size_t total)
 {
     if (j->reg->progress)
@@ -269,6 +275,8 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e)
         status = figures_new(j->arena, j->model, j->query.perspective, j->date, &j->figures, e);
     if (status == OHMEN_OK)
         status = figures_variant(j->figures, 0, NULL, &j->base, e);
+    if (status == OHMEN_OK)
+        status = job_find_plan(j, e);
     return status;
 }
 

@@ -8,6 +8,7 @@
 #define WORK_WORK_H
 
 #include "decide/lean.h"
+#include "decide/sure.h"
 #include "decide/turn.h"
 #include "figure/supply.h"
 #include "ohmen/ohmen.h"
@@ -21,6 +22,8 @@ struct ohmen_register {
     ohmen_mode mode;
     ohmen_progress *progress; /* or NULL */
     void *progress_ctx;
+    ohmen_stop *stop; /* or NULL */
+    void *stop_ctx;
 };
 
 struct ohmen_report {
@@ -57,6 +60,7 @@ struct job {
     struct figures *figures;
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
+    struct sampling_plan plan;    /* of what is sampled: job_load_figures */
     struct strmap turns; /* decision -> struct turns, once they were asked for (turn.c) */
     struct ohmen_report *out;
     struct report *report; /* &out->report */
@@ -84,6 +88,11 @@ ohmen_status job_load_figures(struct job *j, ohmen_error *e); /* figures, base *
  * version cannot evaluate is left out and noted in not_computed. */
 struct hazards ARRAY_BODY(const struct compiled *);
 ohmen_status job_compile_hazards(struct job *j, struct hazards *out, ohmen_error *e);
+
+/* The plan of samples that the query asks for (plan.c). OHMEN_USAGE. */
+ohmen_status job_find_plan(struct job *j, ohmen_error *e);
+/* What a sample was: "1024 samples in 16 independent sets of 64 scrambled points, seed 1". */
+const char *sampling_words(struct job *j, const struct sampling *s);
 
 /* The site that the query asks for must exist. */
 ohmen_status job_check_site(struct job *j, ohmen_error *e);
