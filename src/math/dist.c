@@ -217,6 +217,11 @@ static double pert_b(const struct dist *d)
     return 1 + LAMBDA * ((d->p[2] - d->p[1]) / (d->p[2] - d->p[0]));
 }
 
+struct dist dist_beta_of_pert(const struct dist *d)
+{
+    return (struct dist){DIST_BETA, {pert_a(d), pert_b(d)}, 0, NULL, NULL};
+}
+
 static double pert_mean(const struct dist *d)
 {
     double rise = d->p[1] - d->p[0], width = d->p[2] - d->p[0];

@@ -64,8 +64,12 @@ double dist_beta_quantile(double a, double b, double p, double q);
 /* Gamma with mean = shape (scale 1): P(shape, x) and its inverse. gsl_gamma.c. */
 double dist_gamma_cdf(double shape, double x);
 double dist_gamma_quantile(double shape, double p, double q);
-/* log B(a, b) */
+/* log B(a, b), log Gamma(x) */
 double dist_log_beta(double a, double b);
+double dist_log_gamma(double x);
+
+/* The beta distribution of which a DIST_PERT is a stretch. */
+struct dist dist_beta_of_pert(const struct dist *d);
 
 /* DIST_COUNTED, the posterior of a rate x with a lognormal prior after n events in the
  * exposure T: density proportional to that of the prior times x^n exp(-T x) (NUREG/CR-6823,

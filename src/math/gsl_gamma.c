@@ -31,7 +31,7 @@ static double call_two(int (*f)(double, double, gsl_sf_result *), double a, doub
     return value_of(f(a, x, &r), &r);
 }
 
-static double log_gamma(double x)
+double dist_log_gamma(double x)
 {
     gsl_sf_result r = {NAN, 0};
     pthread_once(&handler_off, switch_handler_off);
@@ -96,7 +96,7 @@ static double first_guess(const struct target *t, double p, double q)
 
 double dist_gamma_quantile(double shape, double p, double q)
 {
-    struct target t = {shape, log_gamma(shape), math_log(p <= q ? p : q), p > q};
+    struct target t = {shape, dist_log_gamma(shape), math_log(p <= q ? p : q), p > q};
     struct dist_function f = {distance, &t, t.upper ? -1 : 1};
     return math_exp(dist_root(&f, first_guess(&t, p, q), INFINITY));
 }

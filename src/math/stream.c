@@ -25,6 +25,11 @@ struct stream stream_of(const char *name, uint64_t number)
     return (struct stream){mix(mix(name_hash(name) + STEP) ^ mix(number + 1))};
 }
 
+struct stream stream_below(struct stream s, uint64_t number)
+{
+    return (struct stream){mix(mix(s.state + STEP) ^ mix(number + 1))};
+}
+
 uint64_t stream_next(struct stream *s)
 {
     return mix(s->state += STEP);

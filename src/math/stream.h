@@ -18,6 +18,10 @@ struct stream {
 /* The start of stream `number` of a name, which may be empty. */
 struct stream stream_of(const char *name, uint64_t number);
 
+/* Stream `number` of those that a stream has below it: as far from one another, and from what
+ * comes from `s` itself, as streams of different names are. */
+struct stream stream_below(struct stream s, uint64_t number);
+
 /* 64 even bits. */
 uint64_t stream_next(struct stream *s);
 

@@ -1,0 +1,356 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Tables of quantiles (quantile_table.h). Polynomials of degree 5 are Hermite's: value and two
+ * derivatives at both ends. Owns nothing beyond what it puts into the caller's arena.
+ * Invariant: all is decided by the distribution. */
+#include "math/quantile_table.h"
+
+#include <math.h>
+#include <string.h>
+
+#include "math/elementary.h"
+
+#define LOG_ROOT_2_PI 0.91893853320467274178
+#define CORE 6.25    /* the equal steps reach from -CORE to CORE: p = 2e-10 */
+#define END 1.5      /* the length of the two steps beyond */
+#define WITHIN 4e-9  /* the error that is allowed for an estimate */
+#define ACCURATE 6.1 /* the |z| up to which it is: p = 5e-10 */
+
+enum { LEAST_STEPS = 64, MOST_STEPS = 1024 };
+
+struct quantile_standard quantile_standard(const struct dist *d)
+{
+    struct quantile_standard s = {*d, 0, 1};
+    double *p = s.dist.p, width;
+    switch (d->shape) {
+    case DIST_NORMAL:
+        return (struct quantile_standard){{DIST_NORMAL, {0, 1}, 0, NULL, NULL}, p[0], p[1]};
+    case DIST_LOGNORMAL:
+        return (struct quantile_standard){
+            {DIST_LOGNORMAL, {1, p[1], p[2] / p[0]}, 0, NULL, NULL}, 0, p[0]};
+    case DIST_GAMMA:
+        return (struct quantile_standard){{DIST_GAMMA, {1, p[1]}, 0, NULL, NULL}, 0, p[0]};
+    case DIST_UNIFORM:
+        return (struct quantile_standard){{DIST_UNIFORM, {0, 1}, 0, NULL, NULL}, p[0], p[1] - p[0]};
+    case DIST_TRIANGULAR:
+        width = p[2] - p[0];
+        return (struct quantile_standard){
+            {DIST_TRIANGULAR, {0, (p[1] - p[0]) / width, 1}, 0, NULL, NULL}, p[0], width};
+    case DIST_PERT: return (struct quantile_standard){dist_beta_of_pert(d), p[0], p[2] - p[0]};
+    case DIST_COUNTED:
+        return (struct quantile_standard){
+            {DIST_COUNTED, {1, p[1], p[2], p[3] * p[0]}, 0, NULL, NULL}, 0, p[0]};
+    default: return s;
+    }
+}
+
+/* The density f of log x, as log f and its derivative by log x. */
+struct density {
+    double log, slope;
+};
+
+struct shape {
+    const struct dist *dist;
+    double log_factor; /* the part of log f that does not depend on x */
+};
+
+/* y = shape x: f = y^shape exp(-y) / Gamma(shape). */
+static struct density gamma_density(const struct shape *s, double log_x)
+{
+    double a = s->dist->p[1], y = a * math_exp(log_x);
+    return (struct density){a * (log_x + math_log(a)) - y + s->log_factor, a - y};
+}
+
+/* f = x^a (1 - x)^(b - 1) / B(a, b). At x = 1, where doubles do not tell it from its quantile's
+ * neighbours, f is as good as infinite: log x does not change. */
+static struct density beta_density(const struct shape *s, double log_x)
+{
+    double a = s->dist->p[0], b = s->dist->p[1], x = math_exp(log_x), rest = -math_expm1(log_x);
+    if (rest <= 0)
+        return (struct density){INFINITY, 0};
+    double log = a * log_x + (b - 1) * math_log(rest) + s->log_factor;
+    return (struct density){log, a - (b - 1) * x / rest};
+}
+
+/* The normal density of log x over the probability below the cut. */
+static struct density cut_density(const struct shape *s, double log_x)
+{
+    double deviation = math_log(s->dist->p[1]) / DIST_Z95, z = log_x / deviation;
+    return (struct density){-z * z / 2 + s->log_factor, -z / deviation};
+}
+
+static double log_cut_factor(const struct dist *d)
+{
+    double s = math_log(d->p[1]) / DIST_Z95;
+    return -math_log(s) - LOG_ROOT_2_PI - dist_normal_log_probability(math_log(d->p[2]) / s);
+}
+
+static struct shape shape_of(const struct dist *d)
+{
+    double factor = 0;
+    if (d->shape == DIST_GAMMA)
+        factor = -dist_log_gamma(d->p[1]);
+    else if (d->shape == DIST_BETA)
+        factor = -dist_log_beta(d->p[0], d->p[1]);
+    else if (d->shape == DIST_LOGNORMAL)
+        factor = log_cut_factor(d);
+    return (struct shape){d, factor};
+}
+
+static struct density density_at(const struct shape *s, double log_x)
+{
+    switch (s->dist->shape) {
+    case DIST_GAMMA: return gamma_density(s, log_x);
+    case DIST_BETA: return beta_density(s, log_x);
+    case DIST_LOGNORMAL: return cut_density(s, log_x);
+    default: return (struct density){NAN, NAN};
+    }
+}
+
+/* A value and its first two derivatives, in units of the step. */
+struct knot {
+    double value, slope, bend;
+};
+
+/* With L = log x and phi the normal density, dL/dz = phi(z) / f(L). */
+static struct knot knot_at(const struct shape *s, double z, double step)
+{
+    double p = dist_normal_probability(z), q = dist_normal_probability(-z);
+    double log_x = math_log(dist_quantile(s->dist, p, q));
+    struct density f = density_at(s, log_x);
+    double slope = math_exp(-z * z / 2 - LOG_ROOT_2_PI - f.log);
+    return (struct knot){log_x, slope * step, slope * (-z - f.slope * slope) * step * step};
+}
+
+/* The polynomial of a stretch from t = 0 to 1. */
+static void hermite(struct knot l, struct knot r, double c[QUANTILE_TERMS])
+{
+    double rise = r.value - l.value;
+    c[0] = l.value;
+    c[1] = l.slope;
+    c[2] = l.bend / 2;
+    c[3] = 10 * rise - 6 * l.slope - 4 * r.slope - 1.5 * l.bend + 0.5 * r.bend;
+    c[4] = -15 * rise + 8 * l.slope + 7 * r.slope + 1.5 * l.bend - r.bend;
+    c[5] = 6 * rise - 3 * (l.slope + r.slope) - 0.5 * (l.bend - r.bend);
+}
+
+/* The error in the middle of stretch k or of the next, whichever is greater, or about that. With
+ * D the sixth derivative it is D / 720 / 2^6, and the third derivatives of the two differ by D / 60
+ * where they meet. */
+static double error_between(double *const term[QUANTILE_TERMS], size_t k)
+{
+    double here = 6 * term[3][k] + 24 * term[4][k] + 60 * term[5][k];
+    return fabs(here - 6 * term[3][k + 1]) / 768;
+}
+
+static void new_terms(struct arena *a, size_t n, double *term[QUANTILE_TERMS])
+{
+    for (int j = 0; j < QUANTILE_TERMS; j++)
+        term[j] = NEW_ARRAY(a, n, double);
+}
+
+/* Stretch k of n between two knots whose derivatives are by `length` units; in the end it is in
+ * units, its start at unit `start`. */
+static void put_stretch(struct quantile_steps *s, size_t k, struct knot l, struct knot r)
+{
+    double c[QUANTILE_TERMS];
+    hermite(l, r, c);
+    for (int j = 0; j < QUANTILE_TERMS; j++)
+        s->term[j][k] = c[j];
+}
+
+/* The two long steps: their polynomials in t of the core's steps, the first of which would begin
+ * one such step before the core. */
+static void put_end(struct quantile_steps *s, size_t k, struct knot l, struct knot r, double length,
+                    double start)
+{
+    double c[QUANTILE_TERMS], power = 1;
+    hermite(l, r, c);
+    for (int j = 0; j < QUANTILE_TERMS; j++, power /= length)
+        c[j] *= power;
+    for (int i = 0; i < QUANTILE_TERMS; i++) /* from powers of t - start to those of t */
+        for (int j = QUANTILE_TERMS - 2; j >= i; j--)
+            c[j] -= start * c[j + 1];
+    for (int j = 0; j < QUANTILE_TERMS; j++)
+        s->term[j][k] = c[j];
+}
+
+static struct knot in_units(struct knot k, double factor)
+{
+    return (struct knot){k.value, k.slope * factor, k.bend * factor * factor};
+}
+
+/* `core` equal steps, and one more at each end; false where the error is too great, or a number is
+ * not finite. */
+static bool make_steps(struct arena *a, const struct shape *shape, size_t core,
+                       struct quantile_steps *s)
+{
+    double step = 2 * CORE / (double)core, length = END / step;
+    s->n = core + 2;
+    s->per_step = 1 / step;
+    s->from = -CORE - step;
+    s->logarithm = true;
+    new_terms(a, s->n, s->term);
+    struct knot first = knot_at(shape, -CORE, step), last = first;
+    for (size_t k = 1; k <= core; k++) {
+        struct knot next = knot_at(shape, -CORE + (double)k * step, step);
+        put_stretch(s, k, last, next);
+        last = next;
+    }
+    put_end(s, 0, knot_at(shape, -CORE - END, END), in_units(first, length), length, 1 - length);
+    put_end(s, core + 1, in_units(last, length), knot_at(shape, CORE + END, END), length, 0);
+    double worst = 0;
+    for (size_t k = 1; k < core; k++) {
+        double z = -CORE + (double)k * step, error = error_between(s->term, k);
+        if (fabs(z) <= ACCURATE + step && !(error <= worst))
+            worst = error;
+    }
+    return worst <= WITHIN && isfinite(s->term[0][0]) && isfinite(s->term[1][core + 1]);
+}
+
+/* Where log x, or x, is a line over z: one step. */
+static void make_line(struct arena *a, double slope, bool logarithm, struct quantile_steps *s)
+{
+    double far = CORE + END;
+    *s = (struct quantile_steps){-far, 1 / (2 * far), 1, {NULL}, logarithm};
+    new_terms(a, 1, s->term);
+    s->term[0][0] = -far * slope;
+    s->term[1][0] = 2 * far * slope;
+}
+
+static bool steps_of(struct arena *a, const struct dist *d, struct quantile_steps *s)
+{
+    if (d->shape == DIST_NORMAL) {
+        make_line(a, 1, false, s);
+        return true;
+    }
+    if (d->shape == DIST_LOGNORMAL && isnan(d->p[2])) {
+        make_line(a, math_log(d->p[1]) / DIST_Z95, true, s);
+        return true;
+    }
+    struct shape shape = shape_of(d);
+    for (size_t core = LEAST_STEPS; core <= MOST_STEPS; core *= 2)
+        if (make_steps(a, &shape, core, s))
+            return true;
+    return false;
+}
+
+/* The step of z, and its polynomial's value and derivatives by z. */
+static struct knot steps_at(const struct quantile_steps *s, double z)
+{
+    double place = (z - s->from) * s->per_step, last = (double)(s->n - 1);
+    double step = floor(place), c[QUANTILE_TERMS];
+    step = step < 0 ? 0 : step > last ? last : step;
+    double t = place - step, per = s->per_step;
+    for (int j = 0; j < QUANTILE_TERMS; j++)
+        c[j] = s->term[j][(size_t)step];
+    double value = c[0] + t * (c[1] + t * (c[2] + t * (c[3] + t * (c[4] + t * c[5]))));
+    double slope = c[1] + t * (2 * c[2] + t * (3 * c[3] + t * (4 * c[4] + t * 5 * c[5])));
+    double bend = 2 * c[2] + t * (6 * c[3] + t * (12 * c[4] + t * 20 * c[5]));
+    return (struct knot){value, slope * per, bend * per * per};
+}
+
+void quantile_edges(struct quantile_edges *edges)
+{
+    for (size_t k = 1; k < QUANTILE_CELLS; k++) {
+        double u = (double)k / QUANTILE_CELLS, v = 1 - u;
+        double z = u <= v ? dist_normal_deviate(u) : -dist_normal_deviate(v);
+        edges->z[k] = z;
+        edges->du[k] = math_exp(z * z / 2 + LOG_ROOT_2_PI) / QUANTILE_CELLS;
+    }
+}
+
+/* The quantile at an edge and its derivatives by t: those of log x become those of x, and with
+ * dz/du = 1 / phi, d2z/du2 = z / phi^2. */
+static struct knot edge_at(const struct quantile_steps *s, double z, double du)
+{
+    struct knot k = steps_at(s, z);
+    if (s->logarithm) {
+        double x = math_exp(k.value);
+        k = (struct knot){x, x * k.slope, x * (k.slope * k.slope + k.bend)};
+    }
+    return (struct knot){k.value, k.slope * du, (k.bend + z * k.slope) * du * du};
+}
+
+static bool cell_is_bad(const struct quantile_cells *c, size_t k)
+{
+    double x = fabs(c->term[0][k + 1]), shortfall = error_between(c->term, k);
+    double scale = x > 0 ? x : fabs(c->term[1][k]);
+    return !(shortfall <= WITHIN * scale);
+}
+
+/* Cells from the middle outwards as far as they are good; the two outermost have no end. */
+static void find_ends(struct quantile_cells *c)
+{
+    enum { HALF = QUANTILE_CELLS / 2 };
+    c->low = c->high = 1;
+    for (size_t k = 1; k + 2 < QUANTILE_CELLS; k++)
+        if (cell_is_bad(c, k)) {
+            if (k < HALF)
+                c->low = k + 2;
+            else if (c->high == 1)
+                c->high = QUANTILE_CELLS - k;
+        }
+}
+
+static void cells_of(struct arena *a, const struct quantile_edges *edges,
+                     const struct quantile_steps *s, struct quantile_cells *out)
+{
+    new_terms(a, QUANTILE_CELLS, out->term);
+    struct knot last = edge_at(s, edges->z[1], edges->du[1]);
+    for (size_t k = 1; k + 1 < QUANTILE_CELLS; k++) {
+        double c[QUANTILE_TERMS];
+        struct knot next = edge_at(s, edges->z[k + 1], edges->du[k + 1]);
+        hermite(last, next, c);
+        for (int j = 0; j < QUANTILE_TERMS; j++)
+            out->term[j][k] = c[j];
+        last = next;
+    }
+    find_ends(out);
+}
+
+static enum quantile_way way_of(const struct dist *d)
+{
+    switch (d->shape) {
+    case DIST_UNIFORM: return QUANTILE_UNIFORM;
+    case DIST_TRIANGULAR: return QUANTILE_TRIANGULAR;
+    case DIST_DISCRETE: return QUANTILE_EXACT;
+    default: return QUANTILE_TABLE;
+    }
+}
+
+void quantile_table_new(struct arena *a, const struct quantile_edges *edges, const struct dist *d,
+                        struct quantile_table *out)
+{
+    *out = (struct quantile_table){way_of(d), *d};
+    if (out->way != QUANTILE_TABLE)
+        return;
+    if (steps_of(a, d, &out->steps))
+        cells_of(a, edges, &out->steps, &out->cells);
+    else
+        out->way = QUANTILE_EXACT;
+}
+
+double quantile_at_deviate(const struct quantile_table *t, double z)
+{
+    double value = steps_at(&t->steps, z).value;
+    return t->steps.logarithm ? math_exp(value) : value;
+}
+
+static double by_cell(const struct quantile_table *table, double u, double v)
+{
+    const struct quantile_cells *c = &table->cells;
+    double place = u * QUANTILE_CELLS, cell = floor(place), t = place - cell;
+    size_t k = (size_t)cell;
+    if (k < c->low || k >= QUANTILE_CELLS - c->high)
+        return quantile_at_deviate(table,
+                                   u <= v ? dist_normal_deviate(u) : -dist_normal_deviate(v));
+    double y = 0;
+    for (int j = QUANTILE_TERMS - 1; j >= 0; j--)
+        y = y * t + c->term[j][k];
+    return y;
+}
+
+double quantile_at(const struct quantile_table *t, double u, double v)
+{
+    return t->way == QUANTILE_TABLE ? by_cell(t, u, v) : dist_quantile(&t->dist, u, v);
+}

@@ -1,0 +1,167 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Tables of quantiles beside libRmath, which computes them by code of its own, and beside
+ * dist_quantile where libRmath has no such distribution. */
+#define MATHLIB_STANDALONE
+#include <Rmath.h>
+#include <check.h>
+#include <math.h>
+#include <stdio.h>
+
+#include "math/quantile_table.h"
+
+#define ALLOWED 1e-8 /* what the header promises, for probabilities in 1e-9 .. 1 - 1e-9 */
+#define LEAST 1e-9
+
+typedef double oracle(const struct dist *d, double p, int lower_tail);
+
+static double r_gamma(const struct dist *d, double p, int lower)
+{
+    return qgamma(p, d->p[1], d->p[0] / d->p[1], lower, 0);
+}
+
+static double r_beta(const struct dist *d, double p, int lower)
+{
+    return qbeta(p, d->p[0], d->p[1], lower, 0);
+}
+
+static double r_pert(const struct dist *d, double p, int lower)
+{
+    double width = d->p[2] - d->p[0];
+    return d->p[0] + width * qbeta(p, 1 + 4 * (d->p[1] - d->p[0]) / width,
+                                   1 + 4 * (d->p[2] - d->p[1]) / width, lower, 0);
+}
+
+static double r_normal(const struct dist *d, double p, int lower)
+{
+    return qnorm(p, d->p[0], d->p[1], lower, 0);
+}
+
+static double r_uniform(const struct dist *d, double p, int lower)
+{
+    return qunif(p, d->p[0], d->p[1], lower, 0);
+}
+
+/* The two tails of a lognormal, cut at p[2] where that is a number. */
+static double r_lognormal(const struct dist *d, double p, int lower)
+{
+    double mean = log(d->p[0]), s = log(d->p[1]) / qnorm(0.95, 0, 1, 1, 0);
+    if (isnan(d->p[2]))
+        return qlnorm(p, mean, s, lower, 0);
+    double inside = plnorm(d->p[2], mean, s, 1, 0), outside = plnorm(d->p[2], mean, s, 0, 0);
+    return lower ? qlnorm(p * inside, mean, s, 1, 0) : qlnorm(p * inside + outside, mean, s, 0, 0);
+}
+
+/* Of a triangle, by its formula. */
+static double by_hand_triangle(const struct dist *d, double p, int lower)
+{
+    double width = d->p[2] - d->p[0], rise = d->p[1] - d->p[0], q = 1 - p;
+    double u = lower ? p : q, v = lower ? q : p;
+    return u * width <= rise ? d->p[0] + sqrt(u * width * rise)
+                             : d->p[2] - sqrt(v * width * (width - rise));
+}
+
+static double own(const struct dist *d, double p, int lower)
+{
+    return lower ? dist_quantile(d, p, 1 - p) : dist_quantile(d, 1 - p, p);
+}
+
+static const struct {
+    struct dist dist;
+    oracle *oracle;
+    bool scaled; /* errors are relative to the deviation: the support is not positive */
+} rows[] = {
+    {{DIST_GAMMA, {2.385e-3, 0.05}}, r_gamma},
+    {{DIST_GAMMA, {2.385e-3, 0.238193}}, r_gamma},
+    {{DIST_GAMMA, {2.385e-3, 0.5}}, r_gamma},
+    {{DIST_GAMMA, {2.385e-3, 1}}, r_gamma},
+    {{DIST_GAMMA, {2.385e-3, 1.24}}, r_gamma},
+    {{DIST_GAMMA, {2.385e-3, 1.6}}, r_gamma},
+    {{DIST_GAMMA, {17.1, 3.24}}, r_gamma},
+    {{DIST_GAMMA, {17.1, 20}}, r_gamma},
+    {{DIST_GAMMA, {17.1, 340}}, r_gamma},
+    {{DIST_GAMMA, {17.1, 1e4}}, r_gamma},
+    {{DIST_BETA, {0.5, 0.5}}, r_beta},
+    {{DIST_BETA, {0.05, 0.2}}, r_beta},
+    {{DIST_BETA, {0.5, 189075.5}}, r_beta},
+    {{DIST_BETA, {1.24, 189075}}, r_beta},
+    {{DIST_BETA, {3.24, 189358}}, r_beta},
+    {{DIST_BETA, {1, 1}}, r_beta},
+    {{DIST_BETA, {2, 5}}, r_beta},
+    {{DIST_BETA, {50, 3}}, r_beta},
+    {{DIST_BETA, {213.5, 1.5}}, r_beta},
+    {{DIST_BETA, {12, 0.3}}, r_beta},
+    {{DIST_BETA, {1000, 1000}}, r_beta},
+    {{DIST_PERT, {1, 2.385, 9}}, r_pert},
+    {{DIST_PERT, {1, 1, 9}}, r_pert},
+    {{DIST_PERT, {0, 9, 9}}, r_pert},
+    {{DIST_NORMAL, {2.385, 0.7}}, r_normal, true},
+    {{DIST_NORMAL, {0, 3}}, r_normal, true},
+    {{DIST_UNIFORM, {2.385, 7.1}}, r_uniform},
+    {{DIST_TRIANGULAR, {1, 2.385, 9}}, by_hand_triangle},
+    {{DIST_TRIANGULAR, {1, 9, 9}}, by_hand_triangle},
+    {{DIST_LOGNORMAL, {0.01, 1.01, NAN}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 3, NAN}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 10, NAN}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 26.8, NAN}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 1e4, NAN}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 10, 0.02}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 3, 0.1}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 3, 0.001}}, r_lognormal},
+    {{DIST_LOGNORMAL, {0.01, 1.5, 0.0103}}, r_lognormal},
+    {{DIST_COUNTED, {0.01, 3, 2, 340}}, own},
+    {{DIST_COUNTED, {0.01, 10, 0, 23.85}}, own},
+    {{DIST_COUNTED, {0.01, 30, 17, 2385}}, own},
+};
+
+struct worst {
+    double error, p;
+};
+
+/* Over all sizes of p, and over all places in cells. */
+static struct worst sweep(size_t row, const struct quantile_table *t,
+                          const struct quantile_standard *s)
+{
+    struct worst worst = {0, 0};
+    double scale = rows[row].scaled ? sqrt(dist_variance(&rows[row].dist)) : 0;
+    for (int i = 0; i < 1400; i++)
+        for (int lower = 0; lower <= 1; lower++) {
+            double p = i < 700 ? LEAST * pow(0.5 / LEAST, i / 699.0) : (i - 699.618) / 1401;
+            double q = 1 - p, expected = rows[row].oracle(&rows[row].dist, p, lower);
+            double x =
+                s->location + s->scale * (lower ? quantile_at(t, p, q) : quantile_at(t, q, p));
+            double error = fabs(x - expected) / (scale > 0 ? scale : fabs(expected));
+            if (!(error <= worst.error))
+                worst = (struct worst){error, lower ? p : q};
+        }
+    return worst;
+}
+
+START_TEST(quantiles)
+{
+    struct arena *a = arena_new(NULL);
+    struct quantile_edges *edges = NEW(a, struct quantile_edges);
+    quantile_edges(edges);
+    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
+        struct quantile_standard s = quantile_standard(&rows[i].dist);
+        struct quantile_table *t = NEW(a, struct quantile_table);
+        quantile_table_new(a, edges, &s.dist, t);
+        struct worst w = sweep(i, t, &s);
+        ck_assert_msg(w.error <= ALLOWED, "row %zu: %.3g at %.9g", i, w.error, w.p);
+    }
+    arena_free(a);
+}
+END_TEST
+
+int main(void)
+{
+    Suite *suite = suite_create("quantile tables");
+    TCase *t = tcase_create("tables");
+    tcase_set_timeout(t, 0);
+    tcase_add_test(t, quantiles);
+    suite_add_tcase(suite, t);
+    SRunner *runner = srunner_create(suite);
+    srunner_run_all(runner, CK_NORMAL);
+    int failed = srunner_ntests_failed(runner), ran = srunner_ntests_run(runner);
+    srunner_free(runner);
+    return failed == 0 && ran > 0 ? 0 : 1;
+}
