@@ -213,6 +213,8 @@ static void add_operation(struct tape_maker *m, struct tape_reached *r)
     for (uint32_t i = 0; i < node->n; i++)
         read_node(m, s, graph_args(m->v->g, r->node)[i]);
     *array_push(m->tape->arena, &s->to) = r->operand = m->n_values++;
+    if (!m->how.by_point)
+        tape_begin_program(m, s);
 }
 
 static void add_steps(struct tape_maker *m)
@@ -239,25 +241,34 @@ static void measure(struct tape *t)
     }
 }
 
+struct tape *tape_new_as(struct arena *a, struct eval *v, enum isa isa,
+                         const struct tape_inputs *in, size_t n_roots, const node_id *roots,
+                         struct tape_how how)
+{
+    struct tape *t = NEW(a, struct tape);
+    struct tape_maker m = {.arena = arena_child(a), .tape = t, .v = v, .in = in, .how = how};
+    *t = (struct tape){.arena = a, .g = v->g, .isa = isa, .n_roots = n_roots};
+    t->n_in = in->n + in->n_given;
+    m.n_values = (uint32_t)t->n_in;
+    reach(&m, n_roots, roots);
+    find_moving(&m);
+    find_needed(&m, n_roots, roots);
+    add_steps(&m);
+    for (size_t i = 0; i < n_roots; i++)
+        *array_push(m.arena, &m.roots) = tape_operand(&m, roots[i]);
+    tape_fuse(&m);
+    tape_place(&m);
+    tape_lower(t);
+    measure(t);
+    arena_free(m.arena);
+    return t;
+}
+
 struct tape *tape_new(struct arena *a, struct eval *v, enum isa isa, const struct tape_inputs *in,
                       size_t n_roots, const node_id *roots)
 {
-    struct tape *t = NEW(a, struct tape);
-    struct tape_maker *m = NEW(a, struct tape_maker);
-    *t = (struct tape){
-        .arena = a, .g = v->g, .isa = isa, .n_in = in->n + in->n_given, .n_roots = n_roots};
-    *m = (struct tape_maker){
-        .arena = arena_child(a), .tape = t, .v = v, .in = in, .n_values = (uint32_t)t->n_in};
-    reach(m, n_roots, roots);
-    find_moving(m);
-    find_needed(m, n_roots, roots);
-    add_steps(m);
-    for (size_t i = 0; i < n_roots; i++)
-        *array_push(m->arena, &m->roots) = tape_operand(m, roots[i]);
-    tape_place(m);
-    measure(t);
-    arena_free(m->arena);
-    return t;
+    struct tape_how how = {.fusing = TAPE_FUSED};
+    return tape_new_as(a, v, isa, in, n_roots, roots, how);
 }
 
 struct tape_size tape_size(const struct tape *t)

@@ -26,15 +26,19 @@ typedef void tape_kernel(const struct tape_step *s, struct tape_work *w, size_t 
 /* Rows that are read, and written. */
 struct tape_rows ARRAY_BODY(uint32_t);
 
+/* Codes of a program (tape_kernels.h). */
+struct tape_codes ARRAY_BODY(uint8_t);
+
 struct tape_step {
     tape_kernel *run;
     node_id node;            /* the operation, the last where there are several */
     uint32_t first_constant; /* rows from here on are constants */
     struct tape_rows args, to;
-    struct tape_rows picks; /* DIAGRAM: which results go to each of `to` */
-    uint32_t operations;    /* of the graph that it stands for */
-    uint32_t room;          /* which of tape_work's rooms is its own, or TAPE_NONE */
-    const void *more;       /* the kernel's own */
+    struct tape_codes codes; /* of arithmetic; none: `run` is all */
+    struct tape_rows picks;  /* DIAGRAM: which results go to each of `to` */
+    uint32_t operations;     /* of the graph that it stands for */
+    uint32_t room;           /* which of tape_work's rooms is its own, or TAPE_NONE */
+    const void *more;        /* the kernel's own */
 };
 
 struct tape {
@@ -77,6 +81,14 @@ tape_kernel tape_average_run;
 
 /* ---- making ---- */
 
+/* How a tape is made; tape_new does all. For tests and measurements. */
+enum tape_fusing { TAPE_SINGLE, TAPE_PAIRS_ONLY, TAPE_FUSED };
+struct tape_how {
+    enum tape_fusing fusing;
+    bool by_point;    /* no kernel but the point rules */
+    bool keeps_slots; /* no slot is used twice */
+};
+
 /* A node that was reached from the roots. */
 struct tape_reached {
     node_id node;
@@ -90,6 +102,7 @@ struct tape_maker {
     struct tape *tape;
     struct eval *v;
     const struct tape_inputs *in;
+    struct tape_how how;
     uint64_t *met; /* a bit for each node of the graph */
     ARRAY(node_id) open;
     ARRAY(struct tape_reached) reached; /* in the order of numbers */
@@ -103,7 +116,20 @@ uint32_t tape_constant(struct tape_maker *m, double x);
 uint32_t tape_operand(struct tape_maker *m, node_id n);
 bool tape_is_given(const struct tape_maker *m, node_id n);
 
+/* The program of an operation whose arguments are read already (tape_fuse.c); some have none. */
+void tape_begin_program(struct tape_maker *m, struct tape_step *s);
+/* Makes one step of several where a value is used only once. */
+void tape_fuse(struct tape_maker *m);
+/* Does the program have a loop of its own? */
+bool tape_has_loop(const struct tape_codes *codes);
+
 /* Gives each value its row (tape_slots.c). */
 void tape_place(struct tape_maker *m);
+/* Chooses the kernels of programs, whose arguments are rows (tape_lower.c). */
+void tape_lower(struct tape *t);
+
+struct tape *tape_new_as(struct arena *a, struct eval *v, enum isa isa,
+                         const struct tape_inputs *in, size_t n_roots, const node_id *roots,
+                         struct tape_how how);
 
 #endif

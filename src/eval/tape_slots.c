@@ -40,7 +40,7 @@ static void leave(struct slots *s, uint32_t value, size_t step)
     if (value & TAPE_CONSTANT || value < s->m->tape->n_in || s->last[value] != step)
         return;
     s->last[value] = TAPE_NONE; /* once */
-    if (!(s->row[value] & TAPE_CONSTANT))
+    if (!(s->row[value] & TAPE_CONSTANT) && !s->m->how.keeps_slots)
         *array_push(s->m->arena, &s->free) = s->row[value];
 }
 

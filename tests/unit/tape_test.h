@@ -4,8 +4,7 @@
 #ifndef TESTS_TAPE_TEST_H
 #define TESTS_TAPE_TEST_H
 
-#include "eval/state.h"
-#include "eval/tape.h"
+#include "eval/tape_parts.h"
 
 #include "random.h"
 
@@ -36,8 +35,9 @@ struct tape_lanes {
 };
 struct tape_lanes tape_lanes_draw(struct tape_world *w, size_t n, size_t n_in);
 
-/* Makes a tape and compares all lanes of all roots with the point rules, for sizes up to n. */
-void tape_check(struct tape_world *w, enum isa isa, const struct tape_inputs *in, size_t n_roots,
+/* Makes tapes in every way, for every instruction set, and compares all lanes of all roots with the
+ * point rules, for sizes up to n. block 0: that of the tape. */
+void tape_check(struct tape_world *w, const struct tape_inputs *in, size_t n_roots,
                 const node_id *roots, const struct tape_lanes *values, size_t block);
 
 /* All inputs. */

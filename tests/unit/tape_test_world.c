@@ -292,20 +292,37 @@ static void run_and_compare(struct checked *c, size_t n)
     }
 }
 
-void tape_check(struct tape_world *w, enum isa isa, const struct tape_inputs *in, size_t n_roots,
-                const node_id *roots, const struct tape_lanes *values, size_t block)
+static void check_tape(struct checked *c, const struct tape_inputs *in, enum isa isa,
+                       struct tape_how how)
 {
     static const size_t sizes[] = {0, 1, 7, 8, 9, 63, 64, 65, 255, 256, 1000};
-    struct checked c = {.w = w, .values = values, .n_roots = n_roots, .roots = roots};
-    c.t = tape_new(w->arena, w->v, isa, in, n_roots, roots);
-    c.block = block ? block : tape_block(c.t);
-    ck_assert(tape_block(c.t) % 64 == 0 && tape_block(c.t) > 0);
-    c.work = tape_work_new(w->arena, c.t, c.block);
+    struct tape_world *w = c->w;
+    size_t asked = c->block;
+    c->t = tape_new_as(w->arena, w->v, isa, in, c->n_roots, c->roots, how);
+    ck_assert(tape_block(c->t) % 64 == 0 && tape_block(c->t) > 0);
+    c->block = asked ? asked : tape_block(c->t);
+    c->work = tape_work_new(w->arena, c->t, c->block);
+    for (size_t k = 0; k < c->n_roots; k++)
+        c->out[k] = NEW_ARRAY(w->arena, c->block + 2, double) + k % 2;
+    for (size_t i = 0; i < sizeof sizes / sizeof *sizes; i++)
+        if (sizes[i] <= c->values->n)
+            run_and_compare(c, sizes[i]);
+    c->block = asked;
+}
+
+void tape_check(struct tape_world *w, const struct tape_inputs *in, size_t n_roots,
+                const node_id *roots, const struct tape_lanes *values, size_t block)
+{
+    static const struct tape_how hows[] = {
+        {.fusing = TAPE_FUSED},  {.fusing = TAPE_PAIRS_ONLY},
+        {.fusing = TAPE_SINGLE}, {.fusing = TAPE_FUSED, .keeps_slots = true},
+        {.by_point = true},
+    };
+    struct checked c = {
+        .w = w, .values = values, .n_roots = n_roots, .roots = roots, .block = block};
     c.want = points(w, in, n_roots, roots, values);
     c.out = NEW_ARRAY(w->arena, n_roots, double *);
-    for (size_t k = 0; k < n_roots; k++)
-        c.out[k] = NEW_ARRAY(w->arena, c.block + 2, double) + k % 2;
-    for (size_t i = 0; i < sizeof sizes / sizeof *sizes; i++)
-        if (sizes[i] <= values->n)
-            run_and_compare(&c, sizes[i]);
+    EACH_ISA(isa)
+    for (size_t i = 0; i < sizeof hows / sizeof *hows; i++)
+        check_tape(&c, in, isa, hows[i]);
 }
