@@ -17,9 +17,8 @@
 static const size_t level_of[3] = {0, 3, 1};
 #define LEAST_WEIGHT 1e-15
 
-/* Of more inputs: as many sets of as many points. */
-enum { INNER_SETS = 16, INNER_LOG2 = 5 };
-static const uint64_t INNER_SEED = 2;
+/* Of more inputs: one set of scrambled points. */
+enum { INNER_LOG2 = 10, INNER_SEED = 2 };
 
 /* ---- which nodes ---- */
 
@@ -153,21 +152,21 @@ static ohmen_status scrambled_points(struct arena *a, struct inner *x, const str
     for (size_t i = 0; i < x->n_varying; i++) {
         inputs[i].name = source->name(source->ctx, varying[i]);
         inputs[i].times = source->dist(source->ctx, varying[i], &inputs[i].dist);
+        inputs[i].place = (unsigned)i;
     }
     ohmen_status status = draws_new(a, &plan, x->n_varying, inputs, &d, e);
     if (status != OHMEN_OK)
         return status;
-    double *work = NEW_ARRAY(a, draws_work(d), double), at[POINTS];
-    make_room(a, x, INNER_SETS * POINTS);
-    x->n_points = INNER_SETS * POINTS;
-    for (size_t i = 0; i < x->n_varying; i++)
-        for (size_t set = 0; set < INNER_SETS; set++) {
-            draws_fill(d, i, set, work, at);
-            for (size_t k = 0; k < POINTS; k++)
-                x->x[(set * POINTS + k) * x->n_varying + i] = at[k];
-        }
-    for (size_t k = 0; k < x->n_points; k++)
-        x->weight[k] = 1.0 / (INNER_SETS * POINTS);
+    double *work = NEW_ARRAY(a, draws_work(d), double), *at = NEW_ARRAY(a, POINTS, double);
+    make_room(a, x, POINTS);
+    x->n_points = POINTS;
+    for (size_t i = 0; i < x->n_varying; i++) {
+        draws_fill(d, i, 0, work, at);
+        for (size_t k = 0; k < POINTS; k++)
+            x->x[k * x->n_varying + i] = at[k];
+    }
+    for (size_t k = 0; k < POINTS; k++)
+        x->weight[k] = 1.0 / POINTS;
     return OHMEN_OK;
 }
 

@@ -9,6 +9,7 @@
 
 #include "base/parallel.h"
 #include "eval/inner.h"
+#include "eval/places.h"
 #include "math/statistics.h"
 
 #include <assert.h>
@@ -78,6 +79,7 @@ ohmen_status sampler_new(struct arena *a, struct means *m, const struct sampling
         inputs[i].name = s->source->name(s->source->ctx, s->inputs[i]);
         inputs[i].times = s->source->dist(s->source->ctx, s->inputs[i], &inputs[i].dist);
     }
+    places_find(a, s->v, n_roots, roots, s->n, s->inputs, inputs);
     struct draw_plan plan = {p->method, p->log2_points, p->seed, p->isa};
     ohmen_status status = draws_new(a, &plan, s->n, inputs, &s->draws, e);
     if (status == OHMEN_OK)

@@ -9,15 +9,17 @@
  * averaged over. Where roots are linear in it, it stands at its mean, which is exact; elsewhere the
  * node that bends (graph_bends) is integrated over it, in every sample: over one such input by its
  * atoms or by the trapezoidal rule of eval/mean.h with steps of 1/8 (exact to 1e-9 for what is
- * smooth), over two by both rules in steps of 1/2, over more on 16 x 32 scrambled points that are
- * the same in all samples.
+ * smooth), over two by both rules in steps of 1/2, over more on 1024 scrambled points that are the
+ * same in all samples.
  *
  * Samples come in sets (math/statistics.h), and sets in batches of SAMPLING_BATCH, after which it
  * is decided whether there are enough: so what is stopped, for whatever reason, stops between two
  * batches, and the outcome depends on their number alone.
  *
- * Invariant: the values of a root depend on the seed, the method, the number of points, and on what
- * is below the root, and on nothing else: not on other roots, threads, block or instruction set. */
+ * Invariant: the values of a root depend on the seed, the method, the number of points, and on the
+ * roots that the sampler was made for (whose inputs are drawn together, each at a place of its own
+ * among scrambled points: eval/places.h), and on nothing else: not on what else is in the graph, on
+ * which of these roots are asked for, on threads, block or instruction set. */
 #ifndef EVAL_SAMPLING_H
 #define EVAL_SAMPLING_H
 

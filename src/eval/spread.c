@@ -1,13 +1,13 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Values of inputs: atoms, quadrature points, latin hypercubes (McKay, Beckman, Conover,
- * Technometrics 21 (1979) 239). Owns all that it makes, in the arena of the means.
+/* Values of inputs: atoms, quadrature points, latin hypercubes (math/draw.h). Owns all that it
+ * makes, in the arena of the means.
  *
  * Invariant: what an input gets depends on its distribution and its name alone. */
 #include "eval/spread.h"
 
 #include "math/dist.h"
+#include "math/draw.h"
 #include "math/elementary.h"
-#include "math/stream.h"
 
 #include <math.h>
 
@@ -120,34 +120,24 @@ ohmen_status spread_rule(struct spreads *s, struct spread *x, size_t level, ohme
     return OHMEN_OK;
 }
 
-/* Set `set` into at: stratum k from k / MEAN_STRATA on. */
-static ohmen_status sample_set(const struct spreads *s, const struct spread *x, size_t set,
-                               double *at, ohmen_error *e)
-{
-    uint32_t order[MEAN_STRATA];
-    struct stream stream = stream_of(x->name, set);
-    stream_permutation(&stream, MEAN_STRATA, order);
-    for (size_t i = 0; i < MEAN_STRATA; i++) {
-        double u = stream_uniform(&stream);
-        double p = (order[i] + u) / MEAN_STRATA;
-        double q = (MEAN_STRATA - 1 - order[i] + (1 - u)) / MEAN_STRATA;
-        ohmen_status status = quantile(s, x, p, q, &at[i], e);
-        if (status != OHMEN_OK)
-            return status;
-    }
-    return OHMEN_OK;
-}
+/* The sets that all knots share. An input must not know of those that it will meet in some knot,
+ * as the places of scrambled points would ask for. */
+static const struct draw_plan plan = {DRAW_HYPERCUBE, SPREAD_LOG2, SPREAD_SEED, ISA_plain};
 
 ohmen_status spread_sample(struct spreads *s, struct spread *x, ohmen_error *e)
 {
+    struct draw_input input = {.name = x->name};
+    struct draws *d;
     if (x->sample)
         return OHMEN_OK;
+    input.times = s->source->dist(s->source->ctx, x->input, &input.dist);
+    ohmen_status status = draws_new(s->arena, &plan, 1, &input, &d, e);
+    if (status != OHMEN_OK)
+        return status;
     double *at = NEW_ARRAY(s->arena, MEAN_SETS * MEAN_STRATA, double);
-    for (size_t set = 0; set < MEAN_SETS; set++) {
-        ohmen_status status = sample_set(s, x, set, at + set * MEAN_STRATA, e);
-        if (status != OHMEN_OK)
-            return status;
-    }
+    double *work = NEW_ARRAY(s->arena, draws_work(d), double);
+    for (size_t set = 0; set < MEAN_SETS; set++)
+        draws_fill(d, 0, set, work, at + set * MEAN_STRATA);
     x->sample = at;
     return OHMEN_OK;
 }

@@ -11,6 +11,9 @@
 #define SPREAD_FAR 12
 #define SPREAD_LEVELS 10
 
+/* Of the samples: MEAN_STRATA = 2^SPREAD_LOG2. */
+enum { SPREAD_LOG2 = 5, SPREAD_SEED = 0 };
+
 struct spread {
     uint32_t input;
     const char *name;
@@ -20,8 +23,8 @@ struct spread {
     size_t n[SPREAD_LEVELS]; /* points of all levels up to this one */
     const double *x, *weight;
     bool is_discrete;
-    /* Value i of set s is sample[s * MEAN_STRATA + i]. In each set one value of each of the
-     * MEAN_STRATA equally likely parts of the distribution, evenly inside it, in random order. */
+    /* Value i of set s is sample[s * MEAN_STRATA + i]: latin hypercubes
+     * (math/draw.h). */
     const double *sample;
 };
 

@@ -44,6 +44,7 @@ struct draw_input {
     const char *name;
     struct dist dist;
     double times;
+    unsigned place; /* DRAW_SCRAMBLED: see above */
 };
 
 struct draws;

@@ -20,7 +20,8 @@ struct mean_world {
     struct mean_source source;
     struct dist dist[MEAN_INPUTS];
     char names[MEAN_INPUTS][24];
-    bool has_quantiles; /* false: the source refuses */
+    bool has_quantiles;       /* false: the source refuses */
+    bool varies[MEAN_INPUTS]; /* from one occurrence to the next */
 };
 
 /* Without inputs, in an arena of the seam; `w` must not move. Section 0 is open. */
