@@ -81,6 +81,15 @@ double dist_counted_variance(const struct dist *d);
 double dist_counted_cdf(const struct dist *d, double x);
 double dist_counted_quantile(const struct dist *d, double p, double q);
 
+/* log x, and there the density of log x: its logarithm, and the derivative of that by log x. */
+struct dist_point {
+    double log_x, log_density, slope;
+};
+
+/* Many quantiles at once, which is much faster than one by one. */
+void dist_counted_quantiles(const struct dist *d, size_t n, const double *p, const double *q,
+                            struct dist_point *at);
+
 /* A monotone function for dist_root: its value and slope at u. Either may be
  * infinite, and the slope 0, where they overflow. */
 struct dist_function {

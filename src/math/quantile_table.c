@@ -43,39 +43,38 @@ struct quantile_standard quantile_standard(const struct dist *d)
     }
 }
 
-/* The density f of log x, as log f and its derivative by log x. */
-struct density {
-    double log, slope;
-};
-
+/* The density f of log x where log x is known. */
 struct shape {
     const struct dist *dist;
     double log_factor; /* the part of log f that does not depend on x */
 };
 
 /* y = shape x: f = y^shape exp(-y) / Gamma(shape). */
-static struct density gamma_density(const struct shape *s, double log_x)
+static void gamma_density(const struct shape *s, struct dist_point *at)
 {
-    double a = s->dist->p[1], y = a * math_exp(log_x);
-    return (struct density){a * (log_x + math_log(a)) - y + s->log_factor, a - y};
+    double a = s->dist->p[1], y = a * math_exp(at->log_x);
+    at->log_density = a * (at->log_x + math_log(a)) - y + s->log_factor;
+    at->slope = a - y;
 }
 
 /* f = x^a (1 - x)^(b - 1) / B(a, b). At x = 1, where doubles do not tell it from its quantile's
  * neighbours, f is as good as infinite: log x does not change. */
-static struct density beta_density(const struct shape *s, double log_x)
+static void beta_density(const struct shape *s, struct dist_point *at)
 {
-    double a = s->dist->p[0], b = s->dist->p[1], x = math_exp(log_x), rest = -math_expm1(log_x);
+    double a = s->dist->p[0], b = s->dist->p[1], x = math_exp(at->log_x);
+    double rest = -math_expm1(at->log_x);
+    at->log_density = a * at->log_x + (b - 1) * math_log(rest) + s->log_factor;
+    at->slope = a - (b - 1) * x / rest;
     if (rest <= 0)
-        return (struct density){INFINITY, 0};
-    double log = a * log_x + (b - 1) * math_log(rest) + s->log_factor;
-    return (struct density){log, a - (b - 1) * x / rest};
+        *at = (struct dist_point){at->log_x, INFINITY, 0};
 }
 
 /* The normal density of log x over the probability below the cut. */
-static struct density cut_density(const struct shape *s, double log_x)
+static void cut_density(const struct shape *s, struct dist_point *at)
 {
-    double deviation = math_log(s->dist->p[1]) / DIST_Z95, z = log_x / deviation;
-    return (struct density){-z * z / 2 + s->log_factor, -z / deviation};
+    double deviation = math_log(s->dist->p[1]) / DIST_Z95, z = at->log_x / deviation;
+    at->log_density = -z * z / 2 + s->log_factor;
+    at->slope = -z / deviation;
 }
 
 static double log_cut_factor(const struct dist *d)
@@ -96,29 +95,49 @@ static struct shape shape_of(const struct dist *d)
     return (struct shape){d, factor};
 }
 
-static struct density density_at(const struct shape *s, double log_x)
+static void add_density(const struct shape *s, struct dist_point *at)
 {
-    switch (s->dist->shape) {
-    case DIST_GAMMA: return gamma_density(s, log_x);
-    case DIST_BETA: return beta_density(s, log_x);
-    case DIST_LOGNORMAL: return cut_density(s, log_x);
-    default: return (struct density){NAN, NAN};
+    if (s->dist->shape == DIST_GAMMA)
+        gamma_density(s, at);
+    else if (s->dist->shape == DIST_BETA)
+        beta_density(s, at);
+    else
+        cut_density(s, at);
+}
+
+/* Exact points for n deviates; p and q are room. */
+static void points_of(const struct shape *s, size_t n, const double *z, double *p, double *q,
+                      struct dist_point *at)
+{
+    for (size_t i = 0; i < n; i++) {
+        p[i] = dist_normal_probability(z[i]);
+        q[i] = dist_normal_probability(-z[i]);
+    }
+    if (s->dist->shape == DIST_COUNTED) {
+        dist_counted_quantiles(s->dist, n, p, q, at);
+        return;
+    }
+    for (size_t i = 0; i < n; i++) {
+        at[i].log_x = math_log(dist_quantile(s->dist, p[i], q[i]));
+        add_density(s, &at[i]);
     }
 }
 
-/* A value and its first two derivatives, in units of the step. */
+/* A value and its first two derivatives, in units of some step. */
 struct knot {
     double value, slope, bend;
 };
 
-/* With L = log x and phi the normal density, dL/dz = phi(z) / f(L). */
-static struct knot knot_at(const struct shape *s, double z, double step)
+static struct knot in_units(struct knot k, double factor)
 {
-    double p = dist_normal_probability(z), q = dist_normal_probability(-z);
-    double log_x = math_log(dist_quantile(s->dist, p, q));
-    struct density f = density_at(s, log_x);
-    double slope = math_exp(-z * z / 2 - LOG_ROOT_2_PI - f.log);
-    return (struct knot){log_x, slope * step, slope * (-z - f.slope * slope) * step * step};
+    return (struct knot){k.value, k.slope * factor, k.bend * factor * factor};
+}
+
+/* With L = log x and phi the normal density, dL/dz = phi(z) / f(L). */
+static struct knot knot_at(const struct dist_point *at, double z, double step)
+{
+    double slope = math_exp(-z * z / 2 - LOG_ROOT_2_PI - at->log_density);
+    return in_units((struct knot){at->log_x, slope, slope * (-z - at->slope * slope)}, step);
 }
 
 /* The polynomial of a stretch from t = 0 to 1. */
@@ -174,9 +193,42 @@ static void put_end(struct quantile_steps *s, size_t k, struct knot l, struct kn
         s->term[j][k] = c[j];
 }
 
-static struct knot in_units(struct knot k, double factor)
+/* Deviates of the knots: those of the core, and the far end of each long step. */
+static double *make_deviates(struct arena *a, size_t core)
 {
-    return (struct knot){k.value, k.slope * factor, k.bend * factor * factor};
+    double *z = NEW_ARRAY(a, core + 3, double), step = 2 * CORE / (double)core;
+    for (size_t k = 0; k <= core; k++)
+        z[k] = -CORE + (double)k * step;
+    z[core + 1] = -CORE - END;
+    z[core + 2] = CORE + END;
+    return z;
+}
+
+static double worst_error(const struct quantile_steps *s, size_t core)
+{
+    double worst = 0, step = 1 / s->per_step;
+    for (size_t k = 1; k < core; k++) {
+        double error = error_between(s->term, k);
+        if (fabs((double)k * step - CORE) <= ACCURATE + step && !(error <= worst))
+            worst = error;
+    }
+    return worst;
+}
+
+static void put_steps(const double *z, const struct dist_point *at, size_t core,
+                      struct quantile_steps *s)
+{
+    double step = 1 / s->per_step, length = END / step;
+    struct knot first = knot_at(&at[0], z[0], step), last = first;
+    for (size_t k = 1; k <= core; k++) {
+        struct knot next = knot_at(&at[k], z[k], step);
+        put_stretch(s, k, last, next);
+        last = next;
+    }
+    struct knot low = knot_at(&at[core + 1], z[core + 1], END);
+    struct knot high = knot_at(&at[core + 2], z[core + 2], END);
+    put_end(s, 0, low, in_units(first, length), length, 1 - length);
+    put_end(s, core + 1, in_units(last, length), high, length, 0);
 }
 
 /* `core` equal steps, and one more at each end; false where the error is too great, or a number is
@@ -184,27 +236,18 @@ static struct knot in_units(struct knot k, double factor)
 static bool make_steps(struct arena *a, const struct shape *shape, size_t core,
                        struct quantile_steps *s)
 {
-    double step = 2 * CORE / (double)core, length = END / step;
-    s->n = core + 2;
-    s->per_step = 1 / step;
-    s->from = -CORE - step;
-    s->logarithm = true;
+    double step = 2 * CORE / (double)core;
+    *s = (struct quantile_steps){-CORE - step, 1 / step, core + 2, {NULL}, true};
     new_terms(a, s->n, s->term);
-    struct knot first = knot_at(shape, -CORE, step), last = first;
-    for (size_t k = 1; k <= core; k++) {
-        struct knot next = knot_at(shape, -CORE + (double)k * step, step);
-        put_stretch(s, k, last, next);
-        last = next;
-    }
-    put_end(s, 0, knot_at(shape, -CORE - END, END), in_units(first, length), length, 1 - length);
-    put_end(s, core + 1, in_units(last, length), knot_at(shape, CORE + END, END), length, 0);
-    double worst = 0;
-    for (size_t k = 1; k < core; k++) {
-        double z = -CORE + (double)k * step, error = error_between(s->term, k);
-        if (fabs(z) <= ACCURATE + step && !(error <= worst))
-            worst = error;
-    }
-    return worst <= WITHIN && isfinite(s->term[0][0]) && isfinite(s->term[1][core + 1]);
+    struct arena *room = arena_child(a);
+    double *z = make_deviates(room, core), *p = NEW_ARRAY(room, core + 3, double),
+           *q = NEW_ARRAY(room, core + 3, double);
+    struct dist_point *at = NEW_ARRAY(room, core + 3, struct dist_point);
+    points_of(shape, core + 3, z, p, q, at);
+    put_steps(z, at, core, s);
+    arena_free(room);
+    return worst_error(s, core) <= WITHIN && isfinite(s->term[0][0]) &&
+           isfinite(s->term[1][core + 1]);
 }
 
 /* Where log x, or x, is a line over z: one step. */
