@@ -21,10 +21,10 @@
  * How well a net does depends on how two matrices happen to meet. Where inputs act together, most
  * pairs have an error far below that of a latin hypercube; but of one pair in about 2^log2_points
  * the halves are equal, or opposite, in every set, and what depends on both then has the error of
- * few points a set. The spread of the sets shows that, and another seed ends it. Computed for a mean
+ * a few points. The spread of the sets shows that, and another seed ends it. Computed for a mean
  * over 7 inputs and sets of 1,024 points, over seeds: the error of a set is .0030 in the middle of
- * all seeds, .010 at worst in 9 of 10, .027 in the worst of 100, where it is .0068 with hypercubes
- * and .021 with independent values. Over names and seeds no choice by names alone does better on
+ * all seeds, .010 at worst in 9 of 10, .027 in the worst of 100; with hypercubes it is .0068, with
+ * independent values .021. Over names and seeds no choice by names alone does better on
  * the average: the halves of a point's parts can be cut in 2^log2_points - 1 ways, and inputs that
  * do not know of each other may take the same one. Dimensions of a Sobol' sequence in place of
  * matrices would be the same for one pair of inputs in as many as there are dimensions.

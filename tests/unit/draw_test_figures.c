@@ -84,8 +84,8 @@ START_TEST(means_have_no_bias)
 }
 END_TEST
 
-/* Like a yearly damage: a rate, two probabilities that multiply, three parts of a cost that add, one
- * of them by a factor. */
+/* Like a yearly damage: a rate, two probabilities that multiply, three parts of a cost that add,
+ * one of them with a factor. */
 enum { SMOOTH = 7 };
 
 static const struct draw_input smooth[SMOOTH] = {
