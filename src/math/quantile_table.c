@@ -105,24 +105,6 @@ static void add_density(const struct shape *s, struct dist_point *at)
         cut_density(s, at);
 }
 
-/* Exact points for n deviates; p and q are room. */
-static void points_of(const struct shape *s, size_t n, const double *z, double *p, double *q,
-                      struct dist_point *at)
-{
-    for (size_t i = 0; i < n; i++) {
-        p[i] = dist_normal_probability(z[i]);
-        q[i] = dist_normal_probability(-z[i]);
-    }
-    if (s->dist->shape == DIST_COUNTED) {
-        dist_counted_quantiles(s->dist, n, p, q, at);
-        return;
-    }
-    for (size_t i = 0; i < n; i++) {
-        at[i].log_x = math_log(dist_quantile(s->dist, p[i], q[i]));
-        add_density(s, &at[i]);
-    }
-}
-
 /* A value and its first two derivatives, in units of some step. */
 struct knot {
     double value, slope, bend;
@@ -150,6 +132,74 @@ static void hermite(struct knot l, struct knot r, double c[QUANTILE_TERMS])
     c[3] = 10 * rise - 6 * l.slope - 4 * r.slope - 1.5 * l.bend + 0.5 * r.bend;
     c[4] = -15 * rise + 8 * l.slope + 7 * r.slope + 1.5 * l.bend - r.bend;
     c[5] = 6 * rise - 3 * (l.slope + r.slope) - 0.5 * (l.bend - r.bend);
+}
+
+/* Room for the knots of a core of equal steps and of the two long ones: core + 3. */
+struct points {
+    size_t core;
+    double *z, *p, *q;
+    struct dist_point *at;
+};
+
+static double log_quantile(const struct dist *d, double p, double q, double near)
+{
+    if (d->shape == DIST_GAMMA)
+        return dist_gamma_log_quantile(d->p[1], p, q, near) - math_log(d->p[1]);
+    if (d->shape == DIST_BETA)
+        return dist_beta_log_quantile(d->p[0], d->p[1], p, q, near);
+    return math_log(dist_quantile(d, p, q));
+}
+
+static void solve(const struct shape *s, const struct points *points, size_t k, double near)
+{
+    if (s->dist->shape == DIST_GAMMA)
+        near += math_log(s->dist->p[1]);
+    points->at[k].log_x = log_quantile(s->dist, points->p[k], points->q[k], near);
+    add_density(s, &points->at[k]);
+}
+
+/* Where the polynomial between two knots comes to one stretch further on. */
+static double onwards(struct knot l, struct knot r)
+{
+    double c[QUANTILE_TERMS], y = 0;
+    hermite(l, r, c);
+    for (int j = QUANTILE_TERMS - 1; j >= 0; j--)
+        y = y * 2 + c[j];
+    return y;
+}
+
+/* `n` points from a solved one on, upwards or downwards, each guessed from those before. */
+static void walk(const struct shape *s, const struct points *points, size_t from, int direction,
+                 size_t n)
+{
+    double step = 2 * CORE / (double)points->core * direction;
+    struct knot last = knot_at(&points->at[from], points->z[from], step), before = last;
+    for (size_t i = 1; i <= n; i++) {
+        size_t k = direction > 0 ? from + i : from - i;
+        double guess = i > 1 ? onwards(before, last) : last.value + last.slope + last.bend / 2;
+        solve(s, points, k, guess);
+        before = last;
+        last = knot_at(&points->at[k], points->z[k], step);
+    }
+}
+
+/* Exact points; counted ones come all together, others one after another from the middle. */
+static void solve_all(const struct shape *s, const struct points *points)
+{
+    size_t core = points->core, middle = core / 2;
+    for (size_t i = 0; i < core + 3; i++) {
+        points->p[i] = dist_normal_probability(points->z[i]);
+        points->q[i] = dist_normal_probability(-points->z[i]);
+    }
+    if (s->dist->shape == DIST_COUNTED) {
+        dist_counted_quantiles(s->dist, core + 3, points->p, points->q, points->at);
+        return;
+    }
+    solve(s, points, middle, NAN);
+    walk(s, points, middle, 1, core - middle);
+    walk(s, points, middle, -1, middle);
+    solve(s, points, core + 1, NAN);
+    solve(s, points, core + 2, NAN);
 }
 
 /* The error in the middle of stretch k or of the next, whichever is greater, or about that. With
@@ -194,14 +244,16 @@ static void put_end(struct quantile_steps *s, size_t k, struct knot l, struct kn
 }
 
 /* Deviates of the knots: those of the core, and the far end of each long step. */
-static double *make_deviates(struct arena *a, size_t core)
+static struct points points_new(struct arena *a, size_t core)
 {
-    double *z = NEW_ARRAY(a, core + 3, double), step = 2 * CORE / (double)core;
+    size_t n = core + 3;
+    struct points p = {core, NEW_ARRAY(a, n, double), NEW_ARRAY(a, n, double),
+                       NEW_ARRAY(a, n, double), NEW_ARRAY(a, n, struct dist_point)};
     for (size_t k = 0; k <= core; k++)
-        z[k] = -CORE + (double)k * step;
-    z[core + 1] = -CORE - END;
-    z[core + 2] = CORE + END;
-    return z;
+        p.z[k] = -CORE + (double)k * (2 * CORE / (double)core);
+    p.z[core + 1] = -CORE - END;
+    p.z[core + 2] = CORE + END;
+    return p;
 }
 
 static double worst_error(const struct quantile_steps *s, size_t core)
@@ -215,10 +267,12 @@ static double worst_error(const struct quantile_steps *s, size_t core)
     return worst;
 }
 
-static void put_steps(const double *z, const struct dist_point *at, size_t core,
-                      struct quantile_steps *s)
+static void put_steps(const struct points *points, struct quantile_steps *s)
 {
+    const double *z = points->z;
     double step = 1 / s->per_step, length = END / step;
+    const struct dist_point *at = points->at;
+    size_t core = points->core;
     struct knot first = knot_at(&at[0], z[0], step), last = first;
     for (size_t k = 1; k <= core; k++) {
         struct knot next = knot_at(&at[k], z[k], step);
@@ -240,11 +294,9 @@ static bool make_steps(struct arena *a, const struct shape *shape, size_t core,
     *s = (struct quantile_steps){-CORE - step, 1 / step, core + 2, {NULL}, true};
     new_terms(a, s->n, s->term);
     struct arena *room = arena_child(a);
-    double *z = make_deviates(room, core), *p = NEW_ARRAY(room, core + 3, double),
-           *q = NEW_ARRAY(room, core + 3, double);
-    struct dist_point *at = NEW_ARRAY(room, core + 3, struct dist_point);
-    points_of(shape, core + 3, z, p, q, at);
-    put_steps(z, at, core, s);
+    struct points points = points_new(room, core);
+    solve_all(shape, &points);
+    put_steps(&points, s);
     arena_free(room);
     return worst_error(s, core) <= WITHIN && isfinite(s->term[0][0]) &&
            isfinite(s->term[1][core + 1]);
