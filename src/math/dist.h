@@ -60,10 +60,14 @@ double dist_normal_deviate(double p);
  * (DLMF 8.17.22) and its inverse by bracketed Newton steps on its logarithm. */
 double dist_beta_cdf(double a, double b, double x);
 double dist_beta_quantile(double a, double b, double p, double q);
+/* Its logarithm; `near` is a guess of that, or NAN. A good guess makes it much faster. */
+double dist_beta_log_quantile(double a, double b, double p, double q, double near);
 
 /* Gamma with mean = shape (scale 1): P(shape, x) and its inverse. gsl_gamma.c. */
 double dist_gamma_cdf(double shape, double x);
 double dist_gamma_quantile(double shape, double p, double q);
+/* As of beta. */
+double dist_gamma_log_quantile(double shape, double p, double q, double near);
 /* log B(a, b), log Gamma(x) */
 double dist_log_beta(double a, double b);
 double dist_log_gamma(double x);
@@ -81,6 +85,15 @@ double dist_counted_variance(const struct dist *d);
 double dist_counted_cdf(const struct dist *d, double x);
 double dist_counted_quantile(const struct dist *d, double p, double q);
 
+/* log x, and there the density of log x: its logarithm, and the derivative of that by log x. */
+struct dist_point {
+    double log_x, log_density, slope;
+};
+
+/* Many quantiles at once, which is much faster than one by one. */
+void dist_counted_quantiles(const struct dist *d, size_t n, const double *p, const double *q,
+                            struct dist_point *at);
+
 /* A monotone function for dist_root: its value and slope at u. Either may be
  * infinite, and the slope 0, where they overflow. */
 struct dist_function {
@@ -93,5 +106,10 @@ struct dist_function {
  * bracket that is widened first; the last step is below 1e-13 max(1, |u|). NAN when
  * it fails. */
 double dist_root(const struct dist_function *f, double start, double high);
+
+/* The same by a few of Newton's steps alone, from a point that is near: to about 1e-13. NAN when
+ * they do not come to rest, or `near` is NAN. */
+double dist_root_near(void (*at)(const void *ctx, double u, double *value, double *slope),
+                      const void *ctx, double near);
 
 #endif

@@ -87,10 +87,14 @@ struct target {
     bool upper;
 };
 
-/* The log of the sought tail minus its target, against u = log x. */
+/* The log of the sought tail minus its target, against u = log x; no number from x = 1 on. */
 static void distance(const void *ctx, double u, double *value, double *slope)
 {
     const struct target *t = ctx;
+    if (u >= 0) {
+        *value = *slope = NAN;
+        return;
+    }
     double ly = log_complement(u);
     struct tails tails = tails_at(t->a, t->b, t->log_beta, u, ly);
     double tail = t->upper ? tails.upper : tails.lower;
@@ -117,4 +121,16 @@ double dist_beta_quantile(double a, double b, double p, double q)
     if (math_log(p) <= below)
         return math_exp(log_quantile(a, b, log_beta, p, q));
     return -math_expm1(log_quantile(b, a, log_beta, q, p));
+}
+
+double dist_beta_log_quantile(double a, double b, double p, double q, double near)
+{
+    struct target t = {a, b, dist_log_beta(a, b), math_log(p <= q ? p : q), p > q};
+    double u = dist_root_near(distance, &t, near), sum = a + b;
+    if (u < 0)
+        return u;
+    double below = tails_at(a, b, t.log_beta, math_log(a / sum), math_log(b / sum)).lower;
+    if (math_log(p) <= below)
+        return log_quantile(a, b, t.log_beta, p, q);
+    return log_complement(log_quantile(b, a, t.log_beta, q, p));
 }

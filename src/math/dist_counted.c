@@ -81,8 +81,8 @@ static double mass(const struct counted *c, double from, double to)
 {
     double half = (to - from) / 2, middle = from + half, sum = 0;
     for (int i = 0; i < POINTS; i++)
-        sum += weights[i] * (density(c, middle - half * points[i]) +
-                             density(c, middle + half * points[i]));
+        sum += weights[i] *
+               (density(c, middle - half * points[i]) + density(c, middle + half * points[i]));
     return half * sum;
 }
 
@@ -134,15 +134,6 @@ double dist_counted_variance(const struct dist *d)
     return c.top * c.top * (sum.second / sum.zeroth);
 }
 
-/* The density of all cells together. */
-static double whole(const struct counted *c)
-{
-    double sum = 0;
-    for (int i = 0; i < CELLS; i++)
-        sum += mass(c, cell_from(c, i), cell_from(c, i + 1));
-    return sum;
-}
-
 /* The cell of a point; outside all of them, the nearest. */
 static int cell_of(const struct counted *c, double d)
 {
@@ -184,20 +175,50 @@ static void excess(const void *ctx, double d, double *value, double *slope)
     *slope = m->direction * density(m->c, d);
 }
 
+/* The density in each cell, and where to look for a tail. */
+struct masses {
+    double whole, cell[CELLS];
+};
+
+static struct masses masses_of(const struct counted *c)
+{
+    struct masses m = {.whole = 0};
+    for (int i = 0; i < CELLS; i++)
+        m.whole += m.cell[i] = mass(c, cell_from(c, i), cell_from(c, i + 1));
+    return m;
+}
+
+/* The distance from the top below (above, where p > q) which the probability p (q) lies. */
+static double place_of(const struct counted *c, const struct masses *masses, double p, double q)
+{
+    bool lower = p <= q;
+    double wanted = (lower ? p : q) * masses->whole, sum = 0;
+    int cell = lower ? 0 : CELLS - 1, step = lower ? 1 : -1;
+    while (sum + masses->cell[cell] < wanted && cell + step >= 0 && cell + step < CELLS) {
+        sum += masses->cell[cell];
+        cell += step;
+    }
+    struct missing m = {c, cell_from(c, lower ? cell : cell + 1), wanted - sum, step};
+    struct dist_function f = {excess, &m, step};
+    return dist_root(&f, cell_from(c, cell) + c->cell / 2, cell_from(c, cell + 1));
+}
+
 double dist_counted_quantile(const struct dist *d, double p, double q)
 {
     struct counted c = make(d);
-    bool lower = p <= q;
-    double wanted = (lower ? p : q) * whole(&c), sum = 0;
-    int cell = lower ? 0 : CELLS - 1, step = lower ? 1 : -1;
-    for (;; cell += step) {
-        double here = mass(&c, cell_from(&c, cell), cell_from(&c, cell + 1));
-        if (sum + here >= wanted || cell + step < 0 || cell + step >= CELLS)
-            break;
-        sum += here;
+    struct masses masses = masses_of(&c);
+    return c.top * math_exp(place_of(&c, &masses, p, q));
+}
+
+void dist_counted_quantiles(const struct dist *d, size_t n, const double *p, const double *q,
+                            struct dist_point *at)
+{
+    struct counted c = make(d);
+    struct masses masses = masses_of(&c);
+    double log_top = math_log(c.top), log_whole = math_log(masses.whole);
+    for (size_t i = 0; i < n; i++) {
+        double place = place_of(&c, &masses, p[i], q[i]);
+        double slope = -place / (c.s * c.s) - c.k * math_expm1(place);
+        at[i] = (struct dist_point){log_top + place, -fall(&c, place) - log_whole, slope};
     }
-    struct missing m = {&c, cell_from(&c, lower ? cell : cell + 1), wanted - sum, step};
-    struct dist_function f = {excess, &m, step};
-    double at = dist_root(&f, cell_from(&c, cell) + c.cell / 2, cell_from(&c, cell + 1));
-    return c.top * math_exp(at);
 }

@@ -44,3 +44,19 @@ double dist_root(const struct dist_function *f, double start, double high)
     }
     return NAN;
 }
+
+/* Newton's steps square the error, but for a factor; 1e-7 leaves 1e-13 or so. */
+double dist_root_near(void (*at)(const void *ctx, double u, double *value, double *slope),
+                      const void *ctx, double near)
+{
+    enum { FEW = 4 };
+    double u = near, value, slope;
+    for (int i = 0; i < FEW && isfinite(u); i++) {
+        at(ctx, u, &value, &slope);
+        double step = value / slope;
+        u -= step;
+        if (fabs(step) <= 1e-7)
+            return u;
+    }
+    return NAN;
+}

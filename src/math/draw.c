@@ -12,28 +12,25 @@
 #include <string.h>
 
 #include "math/draw_kernels.h"
-#include "math/elementary.h"
-#include "math/sobol.h"
+#include "math/lanes.h"
 #include "math/stream.h"
 
 enum { MOST_POINTS = 1 << DRAW_MOST_LOG2 };
-
-static_assert((int)DRAW_MOST_LOG2 <= (int)SOBOL_DIRECTIONS, "a direction for each bit of a point");
 
 struct input {
     const struct quantile_table *table;
     double location, scale; /* x is location + scale times a value of the table */
     struct stream stream;
-    unsigned dimension;
+    uint16_t direction[DRAW_MOST_LOG2]; /* of its net: DRAW_SCRAMBLED */
 };
 
 struct draws {
     enum draw_method method;
     unsigned log2;
     const struct draw_kernels *kernels;
+    const struct lanes_functions *lanes;
     struct input *inputs;
-    uint16_t *counting;               /* 0, 1, 2, ... */
-    uint16_t *cell[SOBOL_DIMENSIONS]; /* of each point, in a dimension that is used */
+    uint16_t *counting; /* 0, 1, 2, ... */
 };
 
 static const struct draw_kernels *const kernels[ISA_COUNT] = {
@@ -101,36 +98,40 @@ static uint16_t *counting_row(struct arena *a, size_t n)
     return row;
 }
 
-/* The points of every dimension that an input has. */
-static void make_points(struct arena *a, struct draws *d, size_t n)
+/* What is left of v when the numbers of the basis are taken off that begin with a bit of it. */
+static uint16_t reduced(const uint16_t basis[DRAW_MOST_LOG2], uint16_t v)
 {
-    uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS];
-    if (!sobol_directions(direction))
-        arena_exhausted(a);
-    for (size_t i = 0; i < n; i++) {
-        unsigned dimension = d->inputs[i].dimension;
-        uint16_t top[SOBOL_DIRECTIONS];
-        if (d->cell[dimension])
+    for (unsigned k = DRAW_MOST_LOG2; k-- > 0;)
+        if (v >> k & 1)
+            v ^= basis[k];
+    return v;
+}
+
+/* Random numbers of log2 bits, none of which is a sum without carry of others. */
+static void make_directions(struct stream s, unsigned log2, uint16_t *direction)
+{
+    uint16_t basis[DRAW_MOST_LOG2] = {0};
+    for (unsigned found = 0; found < log2;) {
+        uint16_t v = (uint16_t)(stream_next(&s) >> (64 - log2)), rest = reduced(basis, v);
+        if (rest == 0)
             continue;
-        for (unsigned k = 0; k < d->log2; k++)
-            top[k] = (uint16_t)(direction[dimension][k] >> (SOBOL_BITS - d->log2));
-        d->cell[dimension] = NEW_ARRAY(a, (size_t)1 << d->log2, uint16_t);
-        d->kernels->net(d->log2, top, d->cell[dimension]);
+        unsigned first = DRAW_MOST_LOG2 - 1;
+        while (!(rest >> first & 1))
+            first--;
+        basis[first] = rest;
+        direction[found++] = v;
     }
 }
 
-static unsigned dimension_of(const char *name)
-{
-    struct stream s = stream_of(name, 0);
-    return (unsigned)((stream_next(&s) >> 32) * SOBOL_DIMENSIONS >> 32);
-}
-
-static struct input input_of(const struct draw_input *in, uint64_t seed,
+static struct input input_of(const struct draw_input *in, const struct draw_plan *p,
                              const struct quantile_table *table,
                              const struct quantile_standard *standard)
 {
-    return (struct input){table, in->times * standard->location, in->times * standard->scale,
-                          stream_below(stream_of(in->name, 0), seed), dimension_of(in->name)};
+    struct stream own = stream_of(in->name, p->seed);
+    struct input made = {table, in->times * standard->location, in->times * standard->scale,
+                         stream_below(own, 0)};
+    make_directions(stream_below(own, 1), p->log2_points, made.direction);
+    return made;
 }
 
 ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
@@ -139,18 +140,20 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
     struct draws *d = NEW(a, struct draws);
     struct quantile_edges *edges = NEW(a, struct quantile_edges);
     struct cache cache = cache_new(a, n);
-    *d = (struct draws){p->method, p->log2_points, kernels[p->isa], NEW_ARRAY(a, n, struct input),
+    *d = (struct draws){p->method,
+                        p->log2_points,
+                        kernels[p->isa],
+                        lanes_functions(p->isa),
+                        NEW_ARRAY(a, n, struct input),
                         counting_row(a, (size_t)1 << p->log2_points)};
     quantile_edges(edges);
     for (size_t i = 0; i < n; i++) {
         struct quantile_standard standard = quantile_standard(&inputs[i].dist);
         const struct quantile_table *table = table_of(a, &cache, edges, &standard.dist);
-        d->inputs[i] = input_of(&inputs[i], p->seed, table, &standard);
+        d->inputs[i] = input_of(&inputs[i], p, table, &standard);
         if (!is_finite(d, &d->inputs[i]))
             return error_set(e, OHMEN_COMPUTE, "%s has no finite quantile", inputs[i].name);
     }
-    if (p->method == DRAW_SCRAMBLED)
-        make_points(a, d, n);
     *out = d;
     return OHMEN_OK;
 }
@@ -158,14 +161,14 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
 /* Rows of the work space. The arrays of whole numbers share the first ones. */
 struct rows {
     uint32_t *jitter;
-    uint16_t *stratum, *place, *spare;
+    uint16_t *stratum, *place, *cell, *spare;
     uint16_t *which; /* values that have no polynomial, and their */
     uint16_t *their_stratum;
     uint32_t *their_jitter;
     double *ordered, *u, *v;
 };
 
-enum { BYTES_A_POINT = 2 * sizeof(uint32_t) + 5 * sizeof(uint16_t) + 3 * sizeof(double) };
+enum { BYTES_A_POINT = 2 * sizeof(uint32_t) + 6 * sizeof(uint16_t) + 3 * sizeof(double) };
 
 size_t draws_work(const struct draws *d)
 {
@@ -180,22 +183,11 @@ static struct rows rows_of(double *work, size_t n)
     r.their_jitter = r.jitter + n;
     r.stratum = (uint16_t *)(void *)(r.their_jitter + n);
     r.place = r.stratum + n;
-    r.spare = r.place + n;
+    r.cell = r.place + n;
+    r.spare = r.cell + n;
     r.which = r.spare + n;
     r.their_stratum = r.which + n;
     return r;
-}
-
-static void deviates(size_t n, const double *u, const double *v, double *z)
-{
-    for (size_t i = 0; i < n; i++)
-        z[i] = u[i] <= v[i] ? dist_normal_deviate(u[i]) : -dist_normal_deviate(v[i]);
-}
-
-static void exponentials(size_t n, const double *x, double *y)
-{
-    for (size_t i = 0; i < n; i++)
-        y[i] = math_exp(x[i]);
 }
 
 /* The values that have no polynomial, through their deviates. */
@@ -207,10 +199,10 @@ static void fill_ends(const struct draws *d, const struct quantile_steps *s, siz
         r->their_jitter[i] = r->jitter[r->which[i]];
     }
     d->kernels->chances(n, d->log2, r->their_stratum, r->their_jitter, r->u, r->v);
-    deviates(n, r->u, r->v, r->u);
+    d->lanes->deviate(n, r->u, r->v, r->u);
     d->kernels->steps(n, s, r->u, r->v);
     if (s->logarithm)
-        exponentials(n, r->v, r->v);
+        d->lanes->exp(n, r->v, r->v);
     for (size_t i = 0; i < n; i++)
         x[r->which[i]] = r->v[i];
 }
@@ -321,7 +313,8 @@ void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, dou
     } else if (d->method == DRAW_SCRAMBLED) {
         nested_order(d, order, &r);
         place = r.place;
-        cell = d->cell[in->dimension];
+        d->kernels->net(d->log2, in->direction, r.cell);
+        cell = r.cell;
     }
     d->kernels->arrange(n, cell, place, r.ordered, in->location, in->scale, x);
 }

@@ -122,16 +122,6 @@ static inline real elementary_power_of_two(integer k)
     return elementary_double((k + 1023) << 52);
 }
 
-/* Whole numbers below 2^50 as the lower bits of doubles: their last bit is worth 1. */
-#define ELEMENTARY_WHOLE 0x1.8p52
-#define ELEMENTARY_WHOLE_BITS UINT64_C(0x4338000000000000)
-
-/* k, |k| < 2^50, as a real. */
-static inline real elementary_real(integer k)
-{
-    return elementary_double(k + ELEMENTARY_WHOLE_BITS) - ELEMENTARY_WHOLE;
-}
-
 /* y 2^k for y in 1/100 .. 2 and |k| < 1200: the first product is exact, the second rounds
  * where the result is subnormal, and may overflow. */
 static inline real elementary_scale(real y, integer k)
@@ -275,9 +265,9 @@ static inline struct elementary_pair elementary_log_pair(struct elementary_split
 /* y, the logarithm of x, or the value of annex F where there is none. */
 static inline real elementary_log_special(real x, real y)
 {
-    real outside = elementary_choose(x == 0, elementary_every(-INFINITY), elementary_every(NAN));
-    outside = elementary_choose(x == x, outside, x + x);
-    return elementary_choose(x > 0, elementary_choose(x < INFINITY, y, x), outside);
+    real pole = elementary_every(-INFINITY), none = elementary_every(NAN);
+    return elementary_choose(x > 0, elementary_choose(x < INFINITY, y, x),
+                             elementary_choose(x == x, elementary_choose(x == 0, pole, none), x + x));
 }
 
 static inline struct elementary_pair elementary_log_of(real x)

@@ -16,6 +16,10 @@
 #include <stdint.h>
 #include <string.h>
 
+/* Whole numbers |k| < 2^50 are the lower bits of this number plus k: the last is worth 1. */
+#define ELEMENTARY_WHOLE 0x1.8p52
+#define ELEMENTARY_WHOLE_BITS UINT64_C(0x4338000000000000)
+
 #ifdef ELEMENTARY_VECTOR
 
 #if defined __AVX512F__
@@ -52,6 +56,12 @@ static inline integer elementary_mask(truth t)
     return (integer)t;
 }
 
+/* k, |k| < 2^50, as a real. */
+static inline real elementary_real(integer k)
+{
+    return (real)(k + ELEMENTARY_WHOLE_BITS) - ELEMENTARY_WHOLE;
+}
+
 #else
 
 #define ELEMENTARY_LANES 1
@@ -67,14 +77,17 @@ static inline real elementary_every(double x)
     return x;
 }
 
-static inline real elementary_choose(truth t, real a, real b)
-{
-    return t ? a : b;
-}
+/* A macro, so that the compiler may leave out what is not chosen. */
+#define elementary_choose(t, a, b) ((t) ? (a) : (b))
 
 static inline integer elementary_mask(truth t)
 {
     return -(integer)t;
+}
+
+static inline real elementary_real(integer k)
+{
+    return (real)(int64_t)k;
 }
 
 #endif

@@ -60,8 +60,7 @@ static double log_lower(const struct target *t, double u)
 {
     double x = math_exp(u);
     if (x < 1e-9)
-        return t->shape * u - t->log_gamma - math_log(t->shape) -
-               t->shape * x / (t->shape + 1);
+        return t->shape * u - t->log_gamma - math_log(t->shape) - t->shape * x / (t->shape + 1);
     return math_log(call_two(gsl_sf_gamma_inc_P_e, t->shape, x));
 }
 
@@ -94,9 +93,26 @@ static double first_guess(const struct target *t, double p, double q)
     return (math_log(p) + t->log_gamma + math_log(t->shape)) / t->shape;
 }
 
+static struct target target_of(double shape, double p, double q)
+{
+    return (struct target){shape, dist_log_gamma(shape), math_log(p <= q ? p : q), p > q};
+}
+
+static double log_quantile(const struct target *t, double p, double q)
+{
+    struct dist_function f = {distance, t, t->upper ? -1 : 1};
+    return dist_root(&f, first_guess(t, p, q), INFINITY);
+}
+
 double dist_gamma_quantile(double shape, double p, double q)
 {
-    struct target t = {shape, dist_log_gamma(shape), math_log(p <= q ? p : q), p > q};
-    struct dist_function f = {distance, &t, t.upper ? -1 : 1};
-    return math_exp(dist_root(&f, first_guess(&t, p, q), INFINITY));
+    struct target t = target_of(shape, p, q);
+    return math_exp(log_quantile(&t, p, q));
+}
+
+double dist_gamma_log_quantile(double shape, double p, double q, double near)
+{
+    struct target t = target_of(shape, p, q);
+    double u = dist_root_near(distance, &t, near);
+    return isnan(u) ? log_quantile(&t, p, q) : u;
 }

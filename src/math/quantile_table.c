@@ -43,39 +43,38 @@ struct quantile_standard quantile_standard(const struct dist *d)
     }
 }
 
-/* The density f of log x, as log f and its derivative by log x. */
-struct density {
-    double log, slope;
-};
-
+/* The density f of log x where log x is known. */
 struct shape {
     const struct dist *dist;
     double log_factor; /* the part of log f that does not depend on x */
 };
 
 /* y = shape x: f = y^shape exp(-y) / Gamma(shape). */
-static struct density gamma_density(const struct shape *s, double log_x)
+static void gamma_density(const struct shape *s, struct dist_point *at)
 {
-    double a = s->dist->p[1], y = a * math_exp(log_x);
-    return (struct density){a * (log_x + math_log(a)) - y + s->log_factor, a - y};
+    double a = s->dist->p[1], y = a * math_exp(at->log_x);
+    at->log_density = a * (at->log_x + math_log(a)) - y + s->log_factor;
+    at->slope = a - y;
 }
 
 /* f = x^a (1 - x)^(b - 1) / B(a, b). At x = 1, where doubles do not tell it from its quantile's
  * neighbours, f is as good as infinite: log x does not change. */
-static struct density beta_density(const struct shape *s, double log_x)
+static void beta_density(const struct shape *s, struct dist_point *at)
 {
-    double a = s->dist->p[0], b = s->dist->p[1], x = math_exp(log_x), rest = -math_expm1(log_x);
+    double a = s->dist->p[0], b = s->dist->p[1], x = math_exp(at->log_x);
+    double rest = -math_expm1(at->log_x);
+    at->log_density = a * at->log_x + (b - 1) * math_log(rest) + s->log_factor;
+    at->slope = a - (b - 1) * x / rest;
     if (rest <= 0)
-        return (struct density){INFINITY, 0};
-    double log = a * log_x + (b - 1) * math_log(rest) + s->log_factor;
-    return (struct density){log, a - (b - 1) * x / rest};
+        *at = (struct dist_point){at->log_x, INFINITY, 0};
 }
 
 /* The normal density of log x over the probability below the cut. */
-static struct density cut_density(const struct shape *s, double log_x)
+static void cut_density(const struct shape *s, struct dist_point *at)
 {
-    double deviation = math_log(s->dist->p[1]) / DIST_Z95, z = log_x / deviation;
-    return (struct density){-z * z / 2 + s->log_factor, -z / deviation};
+    double deviation = math_log(s->dist->p[1]) / DIST_Z95, z = at->log_x / deviation;
+    at->log_density = -z * z / 2 + s->log_factor;
+    at->slope = -z / deviation;
 }
 
 static double log_cut_factor(const struct dist *d)
@@ -96,29 +95,31 @@ static struct shape shape_of(const struct dist *d)
     return (struct shape){d, factor};
 }
 
-static struct density density_at(const struct shape *s, double log_x)
+static void add_density(const struct shape *s, struct dist_point *at)
 {
-    switch (s->dist->shape) {
-    case DIST_GAMMA: return gamma_density(s, log_x);
-    case DIST_BETA: return beta_density(s, log_x);
-    case DIST_LOGNORMAL: return cut_density(s, log_x);
-    default: return (struct density){NAN, NAN};
-    }
+    if (s->dist->shape == DIST_GAMMA)
+        gamma_density(s, at);
+    else if (s->dist->shape == DIST_BETA)
+        beta_density(s, at);
+    else
+        cut_density(s, at);
 }
 
-/* A value and its first two derivatives, in units of the step. */
+/* A value and its first two derivatives, in units of some step. */
 struct knot {
     double value, slope, bend;
 };
 
-/* With L = log x and phi the normal density, dL/dz = phi(z) / f(L). */
-static struct knot knot_at(const struct shape *s, double z, double step)
+static struct knot in_units(struct knot k, double factor)
 {
-    double p = dist_normal_probability(z), q = dist_normal_probability(-z);
-    double log_x = math_log(dist_quantile(s->dist, p, q));
-    struct density f = density_at(s, log_x);
-    double slope = math_exp(-z * z / 2 - LOG_ROOT_2_PI - f.log);
-    return (struct knot){log_x, slope * step, slope * (-z - f.slope * slope) * step * step};
+    return (struct knot){k.value, k.slope * factor, k.bend * factor * factor};
+}
+
+/* With L = log x and phi the normal density, dL/dz = phi(z) / f(L). */
+static struct knot knot_at(const struct dist_point *at, double z, double step)
+{
+    double slope = math_exp(-z * z / 2 - LOG_ROOT_2_PI - at->log_density);
+    return in_units((struct knot){at->log_x, slope, slope * (-z - at->slope * slope)}, step);
 }
 
 /* The polynomial of a stretch from t = 0 to 1. */
@@ -131,6 +132,74 @@ static void hermite(struct knot l, struct knot r, double c[QUANTILE_TERMS])
     c[3] = 10 * rise - 6 * l.slope - 4 * r.slope - 1.5 * l.bend + 0.5 * r.bend;
     c[4] = -15 * rise + 8 * l.slope + 7 * r.slope + 1.5 * l.bend - r.bend;
     c[5] = 6 * rise - 3 * (l.slope + r.slope) - 0.5 * (l.bend - r.bend);
+}
+
+/* Room for the knots of a core of equal steps and of the two long ones: core + 3. */
+struct points {
+    size_t core;
+    double *z, *p, *q;
+    struct dist_point *at;
+};
+
+static double log_quantile(const struct dist *d, double p, double q, double near)
+{
+    if (d->shape == DIST_GAMMA)
+        return dist_gamma_log_quantile(d->p[1], p, q, near) - math_log(d->p[1]);
+    if (d->shape == DIST_BETA)
+        return dist_beta_log_quantile(d->p[0], d->p[1], p, q, near);
+    return math_log(dist_quantile(d, p, q));
+}
+
+static void solve(const struct shape *s, const struct points *points, size_t k, double near)
+{
+    if (s->dist->shape == DIST_GAMMA)
+        near += math_log(s->dist->p[1]);
+    points->at[k].log_x = log_quantile(s->dist, points->p[k], points->q[k], near);
+    add_density(s, &points->at[k]);
+}
+
+/* Where the polynomial between two knots comes to one stretch further on. */
+static double onwards(struct knot l, struct knot r)
+{
+    double c[QUANTILE_TERMS], y = 0;
+    hermite(l, r, c);
+    for (int j = QUANTILE_TERMS - 1; j >= 0; j--)
+        y = y * 2 + c[j];
+    return y;
+}
+
+/* `n` points from a solved one on, upwards or downwards, each guessed from those before. */
+static void walk(const struct shape *s, const struct points *points, size_t from, int direction,
+                 size_t n)
+{
+    double step = 2 * CORE / (double)points->core * direction;
+    struct knot last = knot_at(&points->at[from], points->z[from], step), before = last;
+    for (size_t i = 1; i <= n; i++) {
+        size_t k = direction > 0 ? from + i : from - i;
+        double guess = i > 1 ? onwards(before, last) : last.value + last.slope + last.bend / 2;
+        solve(s, points, k, guess);
+        before = last;
+        last = knot_at(&points->at[k], points->z[k], step);
+    }
+}
+
+/* Exact points; counted ones come all together, others one after another from the middle. */
+static void solve_all(const struct shape *s, const struct points *points)
+{
+    size_t core = points->core, middle = core / 2;
+    for (size_t i = 0; i < core + 3; i++) {
+        points->p[i] = dist_normal_probability(points->z[i]);
+        points->q[i] = dist_normal_probability(-points->z[i]);
+    }
+    if (s->dist->shape == DIST_COUNTED) {
+        dist_counted_quantiles(s->dist, core + 3, points->p, points->q, points->at);
+        return;
+    }
+    solve(s, points, middle, NAN);
+    walk(s, points, middle, 1, core - middle);
+    walk(s, points, middle, -1, middle);
+    solve(s, points, core + 1, NAN);
+    solve(s, points, core + 2, NAN);
 }
 
 /* The error in the middle of stretch k or of the next, whichever is greater, or about that. With
@@ -174,9 +243,46 @@ static void put_end(struct quantile_steps *s, size_t k, struct knot l, struct kn
         s->term[j][k] = c[j];
 }
 
-static struct knot in_units(struct knot k, double factor)
+/* Deviates of the knots: those of the core, and the far end of each long step. */
+static struct points points_new(struct arena *a, size_t core)
 {
-    return (struct knot){k.value, k.slope * factor, k.bend * factor * factor};
+    size_t n = core + 3;
+    struct points p = {core, NEW_ARRAY(a, n, double), NEW_ARRAY(a, n, double),
+                       NEW_ARRAY(a, n, double), NEW_ARRAY(a, n, struct dist_point)};
+    for (size_t k = 0; k <= core; k++)
+        p.z[k] = -CORE + (double)k * (2 * CORE / (double)core);
+    p.z[core + 1] = -CORE - END;
+    p.z[core + 2] = CORE + END;
+    return p;
+}
+
+static double worst_error(const struct quantile_steps *s, size_t core)
+{
+    double worst = 0, step = 1 / s->per_step;
+    for (size_t k = 1; k < core; k++) {
+        double error = error_between(s->term, k);
+        if (fabs((double)k * step - CORE) <= ACCURATE + step && !(error <= worst))
+            worst = error;
+    }
+    return worst;
+}
+
+static void put_steps(const struct points *points, struct quantile_steps *s)
+{
+    const double *z = points->z;
+    double step = 1 / s->per_step, length = END / step;
+    const struct dist_point *at = points->at;
+    size_t core = points->core;
+    struct knot first = knot_at(&at[0], z[0], step), last = first;
+    for (size_t k = 1; k <= core; k++) {
+        struct knot next = knot_at(&at[k], z[k], step);
+        put_stretch(s, k, last, next);
+        last = next;
+    }
+    struct knot low = knot_at(&at[core + 1], z[core + 1], END);
+    struct knot high = knot_at(&at[core + 2], z[core + 2], END);
+    put_end(s, 0, low, in_units(first, length), length, 1 - length);
+    put_end(s, core + 1, in_units(last, length), high, length, 0);
 }
 
 /* `core` equal steps, and one more at each end; false where the error is too great, or a number is
@@ -184,27 +290,16 @@ static struct knot in_units(struct knot k, double factor)
 static bool make_steps(struct arena *a, const struct shape *shape, size_t core,
                        struct quantile_steps *s)
 {
-    double step = 2 * CORE / (double)core, length = END / step;
-    s->n = core + 2;
-    s->per_step = 1 / step;
-    s->from = -CORE - step;
-    s->logarithm = true;
+    double step = 2 * CORE / (double)core;
+    *s = (struct quantile_steps){-CORE - step, 1 / step, core + 2, {NULL}, true};
     new_terms(a, s->n, s->term);
-    struct knot first = knot_at(shape, -CORE, step), last = first;
-    for (size_t k = 1; k <= core; k++) {
-        struct knot next = knot_at(shape, -CORE + (double)k * step, step);
-        put_stretch(s, k, last, next);
-        last = next;
-    }
-    put_end(s, 0, knot_at(shape, -CORE - END, END), in_units(first, length), length, 1 - length);
-    put_end(s, core + 1, in_units(last, length), knot_at(shape, CORE + END, END), length, 0);
-    double worst = 0;
-    for (size_t k = 1; k < core; k++) {
-        double z = -CORE + (double)k * step, error = error_between(s->term, k);
-        if (fabs(z) <= ACCURATE + step && !(error <= worst))
-            worst = error;
-    }
-    return worst <= WITHIN && isfinite(s->term[0][0]) && isfinite(s->term[1][core + 1]);
+    struct arena *room = arena_child(a);
+    struct points points = points_new(room, core);
+    solve_all(shape, &points);
+    put_steps(&points, s);
+    arena_free(room);
+    return worst_error(s, core) <= WITHIN && isfinite(s->term[0][0]) &&
+           isfinite(s->term[1][core + 1]);
 }
 
 /* Where log x, or x, is a line over z: one step. */

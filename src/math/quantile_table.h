@@ -15,8 +15,8 @@
  * 1e-8 for probabilities in 1e-9 .. 1 - 1e-9, in either form; tests hold it. Beyond that 1e-4, for
  * at most one value in 5e8. It is estimated while a table is made, from how much the third
  * derivatives of neighbours differ: steps are halved until it is reached, and a cell that does not
- * reach it has no polynomial. Where 1024 steps are not enough, or a logarithm is not finite (gamma
- * and beta shapes below about .045), there is no table and dist_quantile gives each value.
+ * reach it has no polynomial. Where 1024 steps are not enough there is no table, and dist_quantile
+ * gives each value.
  *
  * Uniform and triangular distributions are computed from their formulas, discrete ones by
  * dist_quantile: exactly, without a table. */

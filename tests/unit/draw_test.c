@@ -56,7 +56,7 @@ void drawing_check_counts(const char *what, const double *count, size_t cells, d
     for (size_t i = 0; i < cells; i++)
         chi += (count[i] - expected) * (count[i] - expected) / expected;
     double p = dist_gamma_cdf((double)(cells - 1) / 2, chi / 2);
-    ck_assert_msg(p > 0.005 && p < 0.995, "%s: chi-square %g of %zu cells: %g", what, chi, cells,
+    ck_assert_msg(p > 0.001 && p < 0.999, "%s: chi-square %g of %zu cells: %g", what, chi, cells,
                   p);
 }
 

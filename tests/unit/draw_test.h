@@ -30,8 +30,8 @@ struct draw_input drawn_evenly(const char *name);
 struct draw_input drawn_lognormal(const char *name, double median, double error_factor);
 struct draw_input drawn_gamma(const char *name, double mean, double shape);
 
-/* Fails where counts in equally likely cells are not ordinary: chi-square outside the middle 99 %
- * of its distribution. */
+/* Fails where counts in equally likely cells are not ordinary: chi-square outside the middle
+ * 99.8 % of its distribution. There are about 30 such checks. */
 void drawing_check_counts(const char *what, const double *count, size_t cells, double expected);
 
 /* Mean and its standard error from the n results of independent sets. */

@@ -70,6 +70,60 @@ START_TEST(other_inputs_do_not_matter)
 }
 END_TEST
 
+/* The values themselves, so that they never change unnoticed: inputs of `all` in set 3 of the seed
+ * 20, the first and the last one. Computed. */
+static const struct {
+    enum draw_method method;
+    unsigned log2;
+    size_t input;
+    double first, last;
+} golden[] = {
+    {DRAW_SCRAMBLED, 4, 0, -0x1.77bfc6d856767p+1, -0x1.257881cb1fa0ap+0},
+    {DRAW_SCRAMBLED, 4, 1, 0x1.066c388711b27p-5, 0x1.a3c9fef019002p-8},
+    {DRAW_SCRAMBLED, 4, 3, 0x1.5227a52be6de8p-11, 0x1.fe7b9e1889adbp-9},
+    {DRAW_SCRAMBLED, 4, 5, -0x1.68b6c5114f284p-18, -0x1.d0a0b821a8d0bp-16},
+    {DRAW_SCRAMBLED, 4, 9, 0x0p+0, 0x1p+0},
+    {DRAW_SCRAMBLED, 4, 10, 0x1.d7f2dc9c8c27ap-8, 0x1.33caddb81a917p-6},
+    {DRAW_SCRAMBLED, 10, 0, -0x1.6364b9bbb02b1p+1, -0x1.0e42267c45ec6p+2},
+    {DRAW_SCRAMBLED, 10, 1, 0x1.0a919ea7fe9f8p-5, 0x1.a91acd299cc48p-8},
+    {DRAW_SCRAMBLED, 10, 3, 0x1.7a0b34924e834p-11, 0x1.1b784a644680fp-11},
+    {DRAW_SCRAMBLED, 10, 5, -0x1.262c0509b8f32p-18, -0x1.32415c40a8803p-16},
+    {DRAW_SCRAMBLED, 10, 9, 0x0p+0, 0x0p+0},
+    {DRAW_SCRAMBLED, 10, 10, 0x1.fecb2fd568324p-8, 0x1.550be01c08baep-7},
+    {DRAW_SCRAMBLED, 12, 0, -0x1.63a6a3ad0ab62p+1, 0x1.781a9b08b08bp-1},
+    {DRAW_SCRAMBLED, 12, 1, 0x1.09fbbe3f27b74p-5, 0x1.ed9a82ec7dfa9p-8},
+    {DRAW_SCRAMBLED, 12, 3, 0x1.7902d0d731bbap-11, 0x1.d4ca64dec67adp-13},
+    {DRAW_SCRAMBLED, 12, 5, -0x1.23cd4c1464ce8p-18, -0x1.42d145b73505cp-16},
+    {DRAW_SCRAMBLED, 12, 9, 0x0p+0, 0x0p+0},
+    {DRAW_SCRAMBLED, 12, 10, 0x1.fef423dab467cp-8, 0x1.2c7b14e6569dp-7},
+    {DRAW_HYPERCUBE, 10, 0, -0x1.16edab35d7384p+0, 0x1.4e16d5496184p-5},
+    {DRAW_HYPERCUBE, 10, 1, 0x1.73f9d97288a22p-7, 0x1.94c6795d35d07p-6},
+    {DRAW_HYPERCUBE, 10, 3, 0x1.6e09cda780267p-17, 0x1.6b59383b6bac3p-11},
+    {DRAW_HYPERCUBE, 10, 5, -0x1.4cb379c73baffp-17, -0x1.657859bf0b681p-16},
+    {DRAW_HYPERCUBE, 10, 9, 0x0p+0, 0x0p+0},
+    {DRAW_HYPERCUBE, 10, 10, 0x1.f1ca689f7509p-9, 0x1.96c38de347df7p-8},
+    {DRAW_PLAIN, 10, 0, -0x1.c751e2b92dcep+1, -0x1.1eace661e444cp+1},
+    {DRAW_PLAIN, 10, 1, 0x1.118a07bd62348p-7, 0x1.33f112565c11ep-3},
+    {DRAW_PLAIN, 10, 3, 0x1.81d6ca899cefbp-13, 0x1.8f194d5d36908p-10},
+    {DRAW_PLAIN, 10, 5, -0x1.07dac2db818efp-17, -0x1.ab684196900dfp-17},
+    {DRAW_PLAIN, 10, 9, 0x1p+0, 0x0p+0},
+    {DRAW_PLAIN, 10, 10, 0x1.4cb85cdd419b6p-6, 0x1.00c738302b5fcp-7},
+};
+
+START_TEST(values_stay)
+{
+    for (size_t i = 0; i < sizeof golden / sizeof *golden; i++) {
+        struct draw_plan plan = {golden[i].method, golden[i].log2, 20, isa_best()};
+        struct drawing d = drawing_new(plan, 1, &all[golden[i].input]);
+        const double *x = drawing_fill(&d, 0, 3);
+        ck_assert_msg(x[0] == golden[i].first && x[d.n - 1] == golden[i].last,
+                      "{%d, %u, %zu, %a, %a},", golden[i].method, golden[i].log2, golden[i].input,
+                      x[0], x[d.n - 1]);
+        drawing_free(&d);
+    }
+}
+END_TEST
+
 /* Values do depend on the seed, the name and the set; location and scale go through. */
 START_TEST(what_matters)
 {
@@ -156,6 +210,7 @@ void draw_test_bytes(TCase *t)
 {
     tcase_add_test(t, instruction_sets_agree);
     tcase_add_test(t, other_inputs_do_not_matter);
+    tcase_add_test(t, values_stay);
     tcase_add_test(t, what_matters);
     tcase_add_test(t, discrete_shares);
     tcase_add_test(t, memory);

@@ -23,7 +23,7 @@ static void count_parts(const double *x, size_t n, double *count)
 START_TEST(each_stratum_has_one)
 {
     static double count[1 << DRAW_MOST_LOG2];
-    struct draw_input in = drawn_evenly("busbar.rate");
+    struct draw_input in = drawn_evenly("line.rate");
     for (int m = 0; m < METHODS; m++)
         for (int k = 0; k < N_SIZES; k++) {
             struct drawing d = drawing_of((enum draw_method)m, sizes[k], 1, &in);
@@ -74,7 +74,7 @@ enum { CELLS = 256, EACH = 400 };
 /* Of every value alone: that at a fixed place, over sets. */
 START_TEST(single_values_are_even)
 {
-    struct draw_input in = drawn_evenly("busbar.rate");
+    struct draw_input in = drawn_evenly("line.rate");
     for (int m = 0; m < METHODS; m++) {
         struct drawing d = drawing_of((enum draw_method)m, 6, 1, &in);
         double first[CELLS] = {0}, last[CELLS] = {0};
@@ -149,7 +149,7 @@ START_TEST(inputs_and_sets_are_independent)
 {
     for (int m = 0; m < METHODS; m++) {
         check_independent((enum draw_method)m, "a", "b");
-        check_independent((enum draw_method)m, "relay.rate", "relay.ratf");
+        check_independent((enum draw_method)m, "line.rate", "line.ratf");
     }
 }
 END_TEST

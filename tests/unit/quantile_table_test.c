@@ -70,6 +70,7 @@ static const struct {
     oracle *oracle;
     bool scaled; /* errors are relative to the deviation: the support is not positive */
 } rows[] = {
+    {{DIST_GAMMA, {2.385e-3, 0.03}}, r_gamma},
     {{DIST_GAMMA, {2.385e-3, 0.05}}, r_gamma},
     {{DIST_GAMMA, {2.385e-3, 0.238193}}, r_gamma},
     {{DIST_GAMMA, {2.385e-3, 0.5}}, r_gamma},
@@ -82,6 +83,8 @@ static const struct {
     {{DIST_GAMMA, {17.1, 1e4}}, r_gamma},
     {{DIST_BETA, {0.5, 0.5}}, r_beta},
     {{DIST_BETA, {0.05, 0.2}}, r_beta},
+    {{DIST_BETA, {0.3, 12}}, r_beta},
+    {{DIST_BETA, {1e4, 3e5}}, r_beta},
     {{DIST_BETA, {0.5, 189075.5}}, r_beta},
     {{DIST_BETA, {1.24, 189075}}, r_beta},
     {{DIST_BETA, {3.24, 189358}}, r_beta},
@@ -113,42 +116,115 @@ static const struct {
     {{DIST_COUNTED, {0.01, 30, 17, 2385}}, own},
 };
 
+enum { ROWS = sizeof rows / sizeof *rows };
+
 struct worst {
     double error, p;
 };
+
+static double deviate(double p, double q)
+{
+    return p <= q ? dist_normal_deviate(p) : -dist_normal_deviate(q);
+}
+
+/* Notes the error at p (lower) or 1 - p, by whatever way the table has, and by deviates. */
+static void compare(size_t row, const struct quantile_table *t, const struct quantile_standard *s,
+                    double p, int lower, struct worst *worst)
+{
+    double u = lower ? p : 1 - p, v = lower ? 1 - p : p, at[2] = {quantile_at(t, u, v)};
+    double expected = rows[row].oracle(&rows[row].dist, p, lower);
+    if (expected >= 0 && expected < 1e-290) { /* libRmath underflows, and so must we */
+        ck_assert(s->scale * at[0] >= 0 && s->scale * at[0] < 1e-280);
+        return;
+    }
+    double scale = rows[row].scaled ? sqrt(dist_variance(&rows[row].dist)) : fabs(expected);
+    at[1] = t->way == QUANTILE_TABLE ? quantile_at_deviate(t, deviate(u, v)) : at[0];
+    for (int form = 0; form < 2; form++) {
+        double error = fabs(s->location + s->scale * at[form] - expected) / scale;
+        if (!(error <= worst->error))
+            *worst = (struct worst){error, u};
+    }
+}
 
 /* Over all sizes of p, and over all places in cells. */
 static struct worst sweep(size_t row, const struct quantile_table *t,
                           const struct quantile_standard *s)
 {
     struct worst worst = {0, 0};
-    double scale = rows[row].scaled ? sqrt(dist_variance(&rows[row].dist)) : 0;
     for (int i = 0; i < 1400; i++)
         for (int lower = 0; lower <= 1; lower++) {
             double p = i < 700 ? LEAST * pow(0.5 / LEAST, i / 699.0) : (i - 699.618) / 1401;
-            double q = 1 - p, expected = rows[row].oracle(&rows[row].dist, p, lower);
-            double x =
-                s->location + s->scale * (lower ? quantile_at(t, p, q) : quantile_at(t, q, p));
-            double error = fabs(x - expected) / (scale > 0 ? scale : fabs(expected));
-            if (!(error <= worst.error))
-                worst = (struct worst){error, lower ? p : q};
+            compare(row, t, s, p, lower, &worst);
         }
     return worst;
+}
+
+static const struct quantile_table *table_of_row(struct arena *a, size_t row,
+                                                 struct quantile_standard *s)
+{
+    struct quantile_edges *edges = NEW(a, struct quantile_edges);
+    struct quantile_table *t = NEW(a, struct quantile_table);
+    quantile_edges(edges);
+    *s = quantile_standard(&rows[row].dist);
+    quantile_table_new(a, edges, &s->dist, t);
+    return t;
 }
 
 START_TEST(quantiles)
 {
     struct arena *a = arena_new(NULL);
-    struct quantile_edges *edges = NEW(a, struct quantile_edges);
-    quantile_edges(edges);
-    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
-        struct quantile_standard s = quantile_standard(&rows[i].dist);
-        struct quantile_table *t = NEW(a, struct quantile_table);
-        quantile_table_new(a, edges, &s.dist, t);
+    for (size_t i = 0; i < ROWS; i++) {
+        struct quantile_standard s;
+        const struct quantile_table *t = table_of_row(a, i, &s);
         struct worst w = sweep(i, t, &s);
         ck_assert_msg(w.error <= ALLOWED, "row %zu: %.3g at %.9g", i, w.error, w.p);
+        ck_assert_msg(t->way != QUANTILE_EXACT, "row %zu has no table", i);
     }
     arena_free(a);
+}
+END_TEST
+
+/* Down to half of the least part that a sample knows, 2^-45. */
+START_TEST(far_ends)
+{
+    static const double far[] = {9e-10, 1e-10, 2e-11, 3e-12, 1e-13, 0x1p-45};
+    struct arena *a = arena_new(NULL);
+    for (size_t i = 0; i < ROWS; i++) {
+        struct quantile_standard s;
+        struct worst w = {0, 0};
+        const struct quantile_table *t = table_of_row(a, i, &s);
+        for (size_t k = 0; k < sizeof far / sizeof *far; k++)
+            for (int lower = 0; lower <= 1; lower++)
+                compare(i, t, &s, far[k], lower, &w);
+        ck_assert_msg(w.error <= 1e-4, "row %zu: %.3g at %.9g", i, w.error, w.p);
+    }
+    arena_free(a);
+}
+END_TEST
+
+/* One table for all that differ by location and scale, and values that come back. */
+START_TEST(standards)
+{
+    static const struct dist same[][2] = {
+        {{DIST_GAMMA, {2.385, 3.24}}, {DIST_GAMMA, {7, 3.24}}},
+        {{DIST_NORMAL, {2.385, 3.24}}, {DIST_NORMAL, {-7, 0.5}}},
+        {{DIST_UNIFORM, {2.385, 3.24}}, {DIST_UNIFORM, {-7, 0.5}}},
+        {{DIST_LOGNORMAL, {2.385, 3.24, NAN}}, {DIST_LOGNORMAL, {7, 3.24, NAN}}},
+        {{DIST_LOGNORMAL, {2, 3, 5}}, {DIST_LOGNORMAL, {8, 3, 20}}},
+        {{DIST_TRIANGULAR, {0, 2, 5}}, {DIST_TRIANGULAR, {-1, 3, 9}}},
+        {{DIST_PERT, {0, 2, 5}}, {DIST_PERT, {-1, 3, 9}}},
+        {{DIST_COUNTED, {2, 5, 3, 8}}, {DIST_COUNTED, {4, 5, 3, 4}}}};
+    for (size_t i = 0; i < sizeof same / sizeof *same; i++) {
+        struct quantile_standard one = quantile_standard(&same[i][0]);
+        struct quantile_standard other = quantile_standard(&same[i][1]);
+        ck_assert_mem_eq(&one.dist, &other.dist, sizeof one.dist);
+        for (int k = 0; k < 2; k++) {
+            struct quantile_standard s = k == 0 ? one : other;
+            double x = s.location + s.scale * dist_quantile(&s.dist, 0.238, 0.762);
+            double expected = dist_quantile(&same[i][k], 0.238, 0.762);
+            ck_assert_double_eq_tol(x, expected, 1e-12 * fabs(expected));
+        }
+    }
 }
 END_TEST
 
@@ -158,6 +234,8 @@ int main(void)
     TCase *t = tcase_create("tables");
     tcase_set_timeout(t, 0);
     tcase_add_test(t, quantiles);
+    tcase_add_test(t, far_ends);
+    tcase_add_test(t, standards);
     suite_add_tcase(suite, t);
     SRunner *runner = srunner_create(suite);
     srunner_run_all(runner, CK_NORMAL);
