@@ -258,7 +258,7 @@ struct tape *tape_new_as(struct arena *a, struct eval *v, enum isa isa,
         *array_push(m.arena, &m.roots) = tape_operand(&m, roots[i]);
     tape_fuse(&m);
     tape_place(&m);
-    tape_lower(t);
+    tape_lower(&m);
     measure(t);
     arena_free(m.arena);
     return t;

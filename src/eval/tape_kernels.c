@@ -8,15 +8,15 @@
 #include "eval/tape_vector.h"
 
 /* An operand before the loop, and at lane i. */
-#define BEFORE_s(x, k) const double *x = w->row[s->args.at[k]]
-#define BEFORE_c(x, k) const vector x = all(*w->row[s->args.at[k]])
+#define BEFORE_s(x, k) const double *x = w->row[c->rows[1 + k]]
+#define BEFORE_c(x, k) const vector x = all(w->constant[c->rows[1 + k]])
 #define AT_s(x) load(x + i)
 #define AT_c(x) x
 
 #define KERNEL(name, before, result)                                                               \
-    static void name(const struct tape_step *s, struct tape_work *w, size_t n)                     \
+    static void name(const struct tape_call *c, struct tape_work *w, size_t n)                     \
     {                                                                                              \
-        double *to = w->row[s->to.at[0]];                                                          \
+        double *to = w->row[c->rows[0]];                                                           \
         before;                                                                                    \
         for (size_t i = 0; i < n; i += WIDTH)                                                      \
             store(to + i, result);                                                                 \
@@ -72,7 +72,7 @@ enum { TILE = 4 * WIDTH };
 #define SECOND_s(k) load(second + k * WIDTH)
 #define SECOND_c(k) all_second
 #define READ_s(x) const double *x = w->row[*arg++] + i
-#define READ_c(x) const vector all_##x = all(*w->row[*arg++])
+#define READ_c(x) const vector all_##x = all(w->constant[*arg++])
 
 #define CASE(name, form, body)                                                                     \
     case TAPE_FORMS *TAPE_##name + form: {                                                         \
@@ -129,15 +129,15 @@ enum { TILE = 4 * WIDTH };
 #define STORE(k) store(to + i + k * WIDTH, a##k);
 #define DECLARE(k) vector a##k = {0}, s##k = {0}, l##k = {0};
 
-static void program(const struct tape_step *s, struct tape_work *w, size_t n)
+static void program(const struct tape_call *c, struct tape_work *w, size_t n)
 {
-    const struct tape_program *p = s->more;
-    double *to = w->row[s->to.at[0]];
+    const struct tape_program *p = c->more;
+    double *to = w->row[c->rows[0]];
     for (size_t i = 0; i < n; i += TILE) {
-        const uint32_t *arg = s->args.at;
+        const uint32_t *arg = c->rows + 1;
         EACH(DECLARE)
-        for (size_t c = 0; c < p->n; c++)
-            switch (p->code[c]) {
+        for (size_t k = 0; k < p->n; k++)
+            switch (p->code[k]) {
                 TAPE_CODES_0(ALONE_CASE)
                 TAPE_CODES_1(WITH_CASES)
                 CASES_1(take, TAKE)
