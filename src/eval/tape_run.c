@@ -10,6 +10,9 @@
 /* What the slots may take of the first cache, and how few or many lanes are worth a step. */
 enum { CACHE = 24 * 1024, FEWEST = 64, MOST = 512 };
 
+/* Doubles in a line of the cache. */
+enum { LINE = 8 };
+
 size_t tape_block(const struct tape *t)
 {
     size_t n = t->n_slots ? CACHE / sizeof(double) / t->n_slots : MOST;
@@ -17,11 +20,16 @@ size_t tape_block(const struct tape *t)
     return n < FEWEST ? FEWEST : n > MOST ? MOST : n;
 }
 
+/* Rows begin with a line of the cache, and each with another of its sets, so that the same lane of
+ * two rows never is at the same place of two pages. */
 static double **new_rows(struct arena *a, size_t n, size_t length)
 {
     double **row = NEW_ARRAY(a, n, double *);
+    size_t step = length + LINE;
+    double *all = NEW_ARRAY(a, n * step + LINE, double);
+    size_t beyond = (uintptr_t)all / sizeof *all % LINE;
     for (size_t i = 0; i < n; i++)
-        row[i] = NEW_ARRAY(a, length, double);
+        row[i] = all + (LINE - beyond) + i * step;
     return row;
 }
 
