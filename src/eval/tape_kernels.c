@@ -63,9 +63,18 @@ COMPLEMENT_TIMES(s, c)
 
 /* ---- any program ---- */
 
-/* One code for a tile of four vectors. */
-#define EACH(DO) DO(0) DO(1) DO(2) DO(3)
-enum { TILE = 4 * WIDTH };
+/* One code for a tile of eight vectors. */
+#define EACH(DO) DO(0) DO(1) DO(2) DO(3) DO(4) DO(5) DO(6) DO(7)
+#define EACH_OF(DO, code)                                                                          \
+    DO(code, 0)                                                                                    \
+    DO(code, 1)                                                                                    \
+    DO(code, 2)                                                                                    \
+    DO(code, 3)                                                                                    \
+    DO(code, 4)                                                                                    \
+    DO(code, 5)                                                                                    \
+    DO(code, 6)                                                                                    \
+    DO(code, 7)
+enum { TILE = 8 * WIDTH };
 
 #define FIRST_s(k) load(first + k * WIDTH)
 #define FIRST_c(k) all_first
@@ -119,13 +128,13 @@ enum { TILE = 4 * WIDTH };
 #define KEY_s(k) s##k = FIRST_s(k);
 #define KEY_c(k) s##k = FIRST_c(k);
 #define END_LOOKUP(k) a##k = select(s##k == s##k, a##k, s##k);
-#define ALONE_CASE(code)                                                                           \
-    CASE(code, 0, a0 = op_##code(a0); a1 = op_##code(a1); a2 = op_##code(a2); a3 = op_##code(a3))
+#define ALONE_AT(code, k) a##k = op_##code(a##k);
+#define WITH_s(code, k) a##k = op_##code(a##k, FIRST_s(k));
+#define WITH_c(code, k) a##k = op_##code(a##k, FIRST_c(k));
+#define ALONE_CASE(code) CASE(code, 0, EACH_OF(ALONE_AT, code))
 #define WITH_CASES(code)                                                                           \
-    CASE(code, 0, READ_s(first); a0 = op_##code(a0, FIRST_s(0)); a1 = op_##code(a1, FIRST_s(1));   \
-         a2 = op_##code(a2, FIRST_s(2)); a3 = op_##code(a3, FIRST_s(3)))                           \
-    CASE(code, 1, READ_c(first); a0 = op_##code(a0, all_first); a1 = op_##code(a1, all_first);     \
-         a2 = op_##code(a2, all_first); a3 = op_##code(a3, all_first))
+    CASE(code, 0, READ_s(first); EACH_OF(WITH_s, code))                                            \
+    CASE(code, 1, READ_c(first); EACH_OF(WITH_c, code))
 #define STORE(k) store(to + i + k * WIDTH, a##k);
 #define DECLARE(k) vector a##k = {0}, s##k = {0}, l##k = {0};
 
