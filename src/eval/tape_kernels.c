@@ -188,5 +188,6 @@ const struct tape_kernels ISA_NAME(tape_kernels) = {
     .complement_times = {complement_times_ss, NULL, complement_times_sc},
     .blend = {blend_sss, NULL, blend_scs, NULL, blend_ssc, NULL, blend_scc},
     .program = program,
+    .diagram = ISA_NAME(tape_diagram),
 };
 /* clang-format on */

@@ -89,8 +89,8 @@ struct tape_kernels {
     tape_kernel *pair[TAPE_PAIR_COUNT][TAPE_FORMS_3];
     tape_kernel *complement_times[TAPE_FORMS]; /* take, complement, times */
     tape_kernel *blend[TAPE_FORMS_3];          /* take, blend */
-    tape_kernel *program;                      /* any; `more` is a struct tape_program */
-    tape_kernel *diagram;                      /* `more` is a struct tape_leaves */
+    tape_kernel *program; /* any; `more` of the call is a struct tape_program */
+    tape_kernel *diagram; /* args: p, then q of each variable; TAPE_NONE: 1 - p */
 };
 
 struct tape_program {
@@ -98,7 +98,22 @@ struct tape_program {
     const uint8_t *code; /* TAPE_FORMS * code + form */
 };
 
-#define X(name, needs) extern const struct tape_kernels tape_kernels_##name;
+/* A diagram's rows take this many lanes at a time; the doubles and the pointers of its tile. */
+enum { TAPE_LONG_TILE = TAPE_GROUP, TAPE_SHORT_TILE = TAPE_GROUP / 2, TAPE_TILE_ROWS = 48 };
+
+static inline size_t tape_tile_rows(const struct diagram *d)
+{
+    return d->n_nodes + 2 + 2 * (size_t)d->n_variables;
+}
+
+static inline size_t tape_tile(const struct diagram *d)
+{
+    return tape_tile_rows(d) <= TAPE_TILE_ROWS ? TAPE_LONG_TILE : TAPE_SHORT_TILE;
+}
+
+#define X(name, needs)                                                                             \
+    extern const struct tape_kernels tape_kernels_##name;                                          \
+    tape_kernel tape_diagram_##name;
 ISAS(X)
 #undef X
 

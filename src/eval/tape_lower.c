@@ -13,6 +13,7 @@ struct lowering_tape {
     struct arena *arena;
     struct tape *tape;
     const struct tape_kernels *kernels;
+    bool by_point;
     ARRAY(const struct tape_program *) programs;
     struct tape_codes codes;
 };
@@ -96,6 +97,8 @@ static void lower(struct lowering_tape *l, struct tape_step *s, struct tape_call
 {
     unsigned form = s->args.n <= 3 ? form_of(s, 0, s->args.n) : 0;
     *c = (struct tape_call){.run = s->run, .more = s};
+    if (s->run == tape_diagram_by_point && !l->by_point)
+        c->run = l->kernels->diagram;
     if (s->codes.n == 0)
         return;
     c->run = loop_of(l->kernels, &s->codes, form);
@@ -128,7 +131,8 @@ static void lay_rows(const struct tape *t)
 void tape_lower(struct tape_maker *m)
 {
     struct tape *t = m->tape;
-    struct lowering_tape l = {.arena = m->arena, .tape = t, .kernels = kernels_of(t->isa)};
+    struct lowering_tape l = {
+        .arena = m->arena, .tape = t, .kernels = kernels_of(t->isa), .by_point = m->how.by_point};
     t->calls = NEW_ARRAY(t->arena, t->steps.n, struct tape_call);
     for (size_t i = 0; i < t->steps.n; i++)
         lower(&l, &t->steps.at[i], &t->calls[i]);

@@ -52,7 +52,7 @@ struct tape {
     struct arena *arena;
     const struct graph *g;
     enum isa isa;
-    size_t n_in, n_roots, n_slots, n_rooms, most_args, most_work;
+    size_t n_in, n_roots, n_slots, n_rooms, most_args, most_room, most_at;
     ARRAY(struct tape_step) steps;
     struct tape_call *calls;
     ARRAY(double) constants;
@@ -65,7 +65,9 @@ struct tape_work {
     double **row;
     const double *constant;
     double **slot, **spare; /* rows of slots; of inputs and roots for a broken group */
-    double *x;              /* scratch: arguments of one lane, and most_work more */
+    double *x;              /* scratch: arguments of one lane */
+    double *room;      /* scratch of diagrams: most_room doubles, from a line of the cache on */
+    const double **at; /* scratch of diagrams: most_at rows */
     struct tape_average **averages;
 };
 

@@ -28,7 +28,7 @@ void tape_diagram_by_point(const struct tape_call *c, struct tape_work *w, size_
 {
     const struct tape_step *s = c->more;
     const struct diagram *d = graph_diagram_of(w->tape->g, s->node);
-    double *p = w->x, *q = p + d->n_variables, *work = q + d->n_variables;
+    double *p = w->x, *q = p + d->n_variables, *work = w->room;
     double *results = work + d->n_nodes + 2;
     (void)n;
     for (size_t lane = 0; lane < w->count; lane++) {

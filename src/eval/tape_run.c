@@ -45,7 +45,9 @@ struct tape_work *tape_work_new(struct arena *a, const struct tape *t, size_t bl
     w->row = NEW_ARRAY(a, t->n_slots + t->n_in + t->n_roots, double *);
     w->slot = new_rows(a, t->n_slots, whole_groups(block + TAPE_GROUP - 1));
     w->spare = new_rows(a, t->n_in + t->n_roots, TAPE_GROUP);
-    w->x = NEW_ARRAY(a, t->most_args + t->most_work, double);
+    w->x = NEW_ARRAY(a, t->most_args, double);
+    w->room = *new_rows(a, 1, t->most_room);
+    w->at = NEW_ARRAY(a, t->most_at, const double *);
     w->averages = NEW_ARRAY(a, t->n_rooms, struct tape_average *);
     for (size_t i = 0; i < t->n_slots; i++)
         w->row[i] = w->slot[i];
