@@ -21,3 +21,4 @@ trap 'exit 130' INT TERM
 "$build/tests/bench/load" 10000
 "$build/tests/bench/diagrams" 10000
 "$build/tests/bench/protection" 10000 "$work"
+"$build/tests/bench/lanes" 1000000

@@ -14,6 +14,7 @@ int main(void)
     srunner_add_suite(sr, suite_utf8());
     srunner_add_suite(sr, suite_diag());
     srunner_add_suite(sr, suite_file());
+    srunner_add_suite(sr, suite_isa());
     srunner_run_all(sr, CK_NORMAL);
     bool good = srunner_ntests_run(sr) > 0 && srunner_ntests_failed(sr) == 0;
     srunner_free(sr);

@@ -12,5 +12,6 @@ Suite *suite_date(void);
 Suite *suite_utf8(void);
 Suite *suite_diag(void);
 Suite *suite_file(void);
+Suite *suite_isa(void);
 
 #endif

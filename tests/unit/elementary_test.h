@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What the suites of the elementary functions share. */
+/* What the suites of the elementary functions share, those of lanes too. */
 #ifndef ELEMENTARY_TEST_H
 #define ELEMENTARY_TEST_H
 
@@ -24,6 +24,8 @@ Suite *suite_elementary_values(void);
 Suite *suite_elementary_sweep(void);
 Suite *suite_elementary_order(void);
 Suite *suite_elementary_bits(void);
+
+/* elementary_random.c */
 
 uint64_t bits_of(double x);
 double double_of(uint64_t bits);
