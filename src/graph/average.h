@@ -31,8 +31,9 @@ void average_values(struct arena *a, const struct averaged *what, double *result
  * room. The diagram, the courses and the windows are those of the first time, and the versions of
  * mixtures stay where they were while they do not change. The same bytes as those of
  * average_values, whatever was asked for before. Lives in `a`, where only averages_new and the
- * first call of averages_take ask for memory: at the most AVERAGES_KEEP bytes beside what the
- * diagram takes (256 a node and 1 kB a variable). Different ones may be used by several threads. */
+ * first call of averages_take ask for memory: at the most AVERAGES_KEEP bytes for what is kept,
+ * 420 a node of the diagram and 4096 a variable. Different ones may be used by several threads at
+ * once. */
 #define AVERAGES_KEEP (400 * 1024)
 struct averages;
 struct averages *averages_new(struct arena *a, const struct averaged *what);
