@@ -104,7 +104,7 @@ static void take_still(struct averages *v, size_t i)
 }
 
 /* Whether it can be computed: finite, and in not too many pieces. */
-static bool is_sound(const struct averages *v, const struct varying *one)
+static bool is_sound(const struct averages *v, const struct moving *one)
 {
     const struct course *c = v->courses[one->timing];
     double longest = 0;
@@ -123,7 +123,7 @@ static bool is_sound(const struct averages *v, const struct varying *one)
     return true;
 }
 
-static bool take_varying(struct averages *v, struct varying *one, bool changed)
+static bool take_varying(struct averages *v, struct moving *one, bool changed)
 {
     one->versions = versions_of(v->what, one->variable);
     if (!changed)
@@ -138,7 +138,7 @@ static bool take_varying(struct averages *v, struct varying *one, bool changed)
     return true;
 }
 
-static bool are_equal(const struct varying *a, const struct varying *b)
+static bool are_equal(const struct moving *a, const struct moving *b)
 {
     return a->timing == b->timing && a->versions.n == 1 && b->versions.n == 1 &&
            memcmp(a->versions.x, b->versions.x, sizeof *a->versions.x) == 0;
@@ -147,7 +147,7 @@ static bool are_equal(const struct varying *a, const struct varying *b)
 static void find_equals(struct averages *v)
 {
     for (size_t i = 0; i < v->n_varying; i++) {
-        struct varying *one = &v->varying[i];
+        struct moving *one = &v->varying[i];
         one->same = i;
         for (size_t k = 0; k < i && one->same == i; k++)
             if (are_equal(&v->varying[k], one))
@@ -156,7 +156,7 @@ static void find_equals(struct averages *v)
 }
 
 /* Exponents that are alive at the end of every piece count for all of them. */
-static void add_fading(struct averages *v, const struct varying *one, bool unreset)
+static void add_fading(struct averages *v, const struct moving *one, bool unreset)
 {
     const struct pace *pace = &one->pace;
     const struct moments *at = &v->timings[one->timing].extremes.at;
@@ -175,7 +175,7 @@ static void find_fading(struct averages *v)
     for (int k = 0; k < PACES; k++)
         v->lasting[k] = 0;
     for (size_t i = 0; i < v->n_varying; i++) {
-        const struct varying *one = &v->varying[i];
+        const struct moving *one = &v->varying[i];
         add_fading(v, one, false);
         if (one->pace.unreset[0] > 0)
             add_fading(v, one, true);
@@ -237,14 +237,14 @@ static void find_variables(struct averages *v, const struct averaged *what)
     const struct diagram *d = v->diagram;
     bool *occurs = NEW_ARRAY(v->arena, d->n_variables, bool);
     v->still = NEW_ARRAY(v->arena, d->n_variables, size_t);
-    v->varying = NEW_ARRAY(v->arena, d->n_variables, struct varying);
+    v->varying = NEW_ARRAY(v->arena, d->n_variables, struct moving);
     v->courses = NEW_ARRAY(v->arena, d->n_variables, const struct course *);
     for (size_t i = 0; i < d->n_nodes; i++)
         occurs[d->nodes[i].variable] = true;
     for (size_t i = 0; i < d->n_variables; i++) {
         if (occurs[i] && what->course[i])
             v->varying[v->n_varying++] =
-                (struct varying){.variable = i, .timing = timing_of(v, what->course[i])};
+                (struct moving){.variable = i, .timing = timing_of(v, what->course[i])};
         else if (occurs[i])
             v->still[v->n_still++] = i;
     }

@@ -13,7 +13,7 @@ struct timing {
 };
 
 /* A variable that changes and occurs. */
-struct varying {
+struct moving {
     size_t variable, timing, same; /* same: the first that is equal, itself if there is none */
     struct mixture versions;
     uint64_t edition; /* rises with each change */
@@ -62,7 +62,7 @@ struct averages {
     struct windows windows;
     bool keeps, begun;
     size_t n_varying, n_timings, n_fading, n_still_rows, n_rows;
-    struct varying *varying;
+    struct moving *varying;
     struct timing *timings;
     const struct course **courses; /* of timings */
     size_t *still;                 /* variables that occur and do not change */

@@ -80,7 +80,7 @@ static void place_courses(struct averages *v)
     if (!has_points(s, &v->points))
         begin_set(v, s);
     for (size_t i = 0; i < v->n_varying; i++) {
-        const struct varying *one = &v->varying[i];
+        const struct moving *one = &v->varying[i];
         v->p[one->variable] = s->p[one->same];
         v->q[one->variable] = s->q[one->same];
         if (one->same != i || s->edition[i] == one->edition)

@@ -54,7 +54,7 @@ static double dot(size_t n, const double *x, const double *y)
 
 static void add_course_slopes(const struct averages *v, const struct slopes *s, size_t i)
 {
-    const struct varying *one = &v->varying[i];
+    const struct moving *one = &v->varying[i];
     const double *x = one->versions.x[0], *dp = s->dp[one->variable];
     double *by = s->out->by[one->variable], slope[COURSE_ARGS];
     const struct moments *at = &v->timings[one->timing].at;
