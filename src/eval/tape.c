@@ -212,8 +212,11 @@ static void add_operation(struct tape_maker *m, struct tape_reached *r)
     for (uint32_t i = 0; i < node->n; i++)
         read_node(m, s, graph_args(m->v->g, r->node)[i]);
     *array_push(m->tape->arena, &s->to) = r->operand = m->n_values++;
-    if (!m->how.by_point)
-        tape_begin_program(m, s);
+    if (m->how.by_point)
+        return;
+    tape_kernel *function = tape_function(m, s);
+    s->run = function ? function : s->run;
+    tape_begin_program(m, s);
 }
 
 static void add_steps(struct tape_maker *m)

@@ -85,7 +85,7 @@ static void take_arguments(const struct tape_averaged *t, struct tape_average *v
     }
 }
 
-struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s)
+struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s, enum isa isa)
 {
     const struct tape_averaged *t = s->more;
     size_t n = t->diagram->n_variables;
@@ -101,7 +101,8 @@ struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s
                                 .q = v->q,
                                 .course = t->course,
                                 .x = (const double(*)[COURSE_ARGS])v->x,
-                                .windows = t->windows};
+                                .windows = t->windows,
+                                .isa = isa};
     take_arguments(t, v, t->at);
     v->averages = averages_new(a, &v->what);
     averages_take(v->averages, &v->what, NULL, v->results);

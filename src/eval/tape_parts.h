@@ -88,7 +88,7 @@ tape_kernel tape_diagram_by_point;
 struct tape_average;
 struct tape_maker;
 void tape_average_begin(struct tape_maker *m, struct tape_step *s, node_id n);
-struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s);
+struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s, enum isa isa);
 tape_kernel tape_average_run;
 
 /* ---- making ---- */
@@ -128,6 +128,8 @@ uint32_t tape_constant(struct tape_maker *m, double x);
 uint32_t tape_operand(struct tape_maker *m, node_id n);
 bool tape_is_given(const struct tape_maker *m, node_id n);
 
+/* The kernel of a function over lanes (tape_functions.c); NULL: not that. Arguments are values. */
+tape_kernel *tape_function(const struct tape_maker *m, const struct tape_step *s);
 /* The program of an operation whose arguments are read already (tape_fuse.c); some have none. */
 void tape_begin_program(struct tape_maker *m, struct tape_step *s);
 /* Makes one step of several where a value is used only once. */

@@ -53,7 +53,7 @@ struct tape_work *tape_work_new(struct arena *a, const struct tape *t, size_t bl
         w->row[i] = w->slot[i];
     for (size_t i = 0; i < t->steps.n; i++)
         if (t->steps.at[i].room != TAPE_NONE)
-            w->averages[t->steps.at[i].room] = tape_average_new(a, &t->steps.at[i]);
+            w->averages[t->steps.at[i].room] = tape_average_new(a, &t->steps.at[i], t->isa);
     return w;
 }
 
