@@ -121,6 +121,14 @@ enum { TILE = 8 * WIDTH };
 #define ADD_ONE_s(k) add_to(&s##k, &l##k, FIRST_s(k));
 #define ADD_ONE_c(k) add_to(&s##k, &l##k, FIRST_c(k));
 #define END_SUM(k) a##k = s##k + l##k;
+#define RESUME_AT(k, sum, rest) s##k = sum, l##k = rest;
+#define RESUME_ss(k) RESUME_AT(k, FIRST_s(k), SECOND_s(k))
+#define RESUME_cs(k) RESUME_AT(k, FIRST_c(k), SECOND_s(k))
+#define RESUME_sc(k) RESUME_AT(k, FIRST_s(k), SECOND_c(k))
+#define RESUME_cc(k) RESUME_AT(k, FIRST_c(k), SECOND_c(k))
+#define END_PART(k)                                                                                \
+    a##k = s##k;                                                                                   \
+    store(lost + k * WIDTH, l##k);
 #define UNITE(k) s##k += a##k * (1 - s##k);
 #define UNITE_ONE_s(k) s##k += FIRST_s(k) * (1 - s##k);
 #define UNITE_ONE_c(k) s##k += FIRST_c(k) * (1 - s##k);
@@ -157,6 +165,8 @@ static void program(const struct tape_call *c, struct tape_work *w, size_t n)
                 CASES_1(add_one, ADD_ONE)
                 CASES_2(add_product, ADD_PRODUCT)
                 CASE_0(end_sum, END_SUM)
+                CASES_2(resume, RESUME)
+                CASE(end_part, 0, double *lost = w->row[*arg++] + i; EACH(END_PART))
                 CASE_0(begin_either, BEGIN_SUM)
                 CASE_0(unite, UNITE)
                 CASES_1(unite_one, UNITE_ONE)

@@ -4,6 +4,7 @@
  * Arithmetic is written as a program of codes that work on one value, `a`, which is kept in
  * registers from the first code to the last; codes take their operands one after the other from
  * the arguments of the step. Between begin_sum and end_sum terms are added to a compensated sum;
+ * (a part of it between resume and end_part);
  * between begin_either and end_either they are united; between key and end_lookup each `reach`
  * takes its value where the key has come to its bound. Short programs that occur often have loops
  * of their own.
@@ -44,6 +45,8 @@
     X(add_one)     /* b */                                                                         \
     X(add_product) /* b * c */                                                                     \
     X(end_sum)                                                                                     \
+    X(resume)   /* a sum, from b and what was lost of it, c */                                     \
+    X(end_part) /* a is the sum so far; the second result what was lost of it */                   \
     X(begin_either)                                                                                \
     X(unite)     /* a */                                                                           \
     X(unite_one) /* b */                                                                           \

@@ -108,12 +108,13 @@ static void lower(struct lowering_tape *l, struct tape_step *s, struct tape_call
     }
 }
 
-/* The rows of all calls, one after the other; constants are counted from 0. */
+/* The rows of all calls, one after the other: a second result comes last; constants are counted
+ * from 0. */
 static void lay_rows(const struct tape *t)
 {
     size_t n = 0;
     for (size_t i = 0; i < t->steps.n; i++)
-        n += t->steps.at[i].codes.n ? 1 + t->steps.at[i].args.n : 0;
+        n += t->steps.at[i].codes.n ? t->steps.at[i].to.n + t->steps.at[i].args.n : 0;
     uint32_t *rows = NEW_ARRAY(t->arena, n, uint32_t);
     for (size_t i = 0; i < t->steps.n; i++) {
         const struct tape_step *s = &t->steps.at[i];
@@ -125,6 +126,8 @@ static void lay_rows(const struct tape *t)
             uint32_t at = s->args.at[k];
             *rows++ = at < s->first_constant ? at : at - s->first_constant;
         }
+        if (s->to.n > 1)
+            *rows++ = s->to.at[1];
     }
 }
 
