@@ -372,7 +372,8 @@ static struct averaged averaged_of(const struct blend *b)
                              .course = b->courses,
                              .x = (const double(*)[COURSE_ARGS])b->values,
                              .mixture = b->mixtures,
-                             .windows = graph_windows_of(b->v->g, b->node)};
+                             .windows = graph_windows_of(b->v->g, b->node),
+                             .isa = b->v->isa};
 }
 
 ohmen_status blend_new(struct arena *a, struct eval *v, struct spreads *s,

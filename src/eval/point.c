@@ -12,6 +12,7 @@ struct eval *eval_new(struct arena *a, const struct graph *g)
     struct eval *v = NEW(a, struct eval);
     v->arena = a;
     v->g = g;
+    v->isa = isa_best();
     return v;
 }
 
@@ -76,7 +77,8 @@ struct averaged eval_averaged(struct eval *v, node_id n)
                              .q = v->q.at,
                              .course = courses,
                              .x = (const double(*)[COURSE_ARGS])values,
-                             .windows = graph_windows_of(v->g, n)};
+                             .windows = graph_windows_of(v->g, n),
+                             .isa = v->isa};
 }
 
 void eval_diagram(struct eval *v, node_id n, double *results)

@@ -74,7 +74,7 @@ static void list_users(struct prober *p)
 
 static void copy_values(struct prober *p, const struct eval *v)
 {
-    p->own = (struct eval){.arena = p->arena, .g = v->g, .done = v->done};
+    p->own = (struct eval){.arena = p->arena, .g = v->g, .isa = v->isa, .done = v->done};
     array_reserve(p->arena, &p->own.value, p->size);
     array_reserve(p->arena, &p->own.results, v->results.n);
     p->own.value.n = p->size;

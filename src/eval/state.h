@@ -19,6 +19,7 @@ struct course_values {
 struct eval {
     struct arena *arena;
     const struct graph *g;
+    enum isa isa; /* of averages over windows */
     ARRAY(double) value;
     size_t done;
     ARRAY(double) results;                /* of all DIAGRAM nodes */

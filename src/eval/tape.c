@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Making a tape (tape.h): a search from the roots down to what moves finds the nodes, which become
  * steps in the order of their numbers; everything else is a constant. Owns nothing but the tape. */
-#include "eval/tape_parts.h"
+#include "eval/tape_kernels.h"
 
 #include "eval/knot.h"
 
@@ -187,8 +187,7 @@ static void add_diagram(struct tape_maker *m, struct tape_reached *r)
         read_node(m, s, args[i]);
     for (uint32_t i = 0; i < d->n_variables; i++)
         read_complement(m, s, args[i]);
-    size_t room = d->n_nodes + 2 + d->n_roots;
-    m->tape->most_work = room > m->tape->most_work ? room : m->tape->most_work;
+    s->more = d;
 }
 
 /* The result of its DIAGRAM, which may have been picked already. */
@@ -213,8 +212,11 @@ static void add_operation(struct tape_maker *m, struct tape_reached *r)
     for (uint32_t i = 0; i < node->n; i++)
         read_node(m, s, graph_args(m->v->g, r->node)[i]);
     *array_push(m->tape->arena, &s->to) = r->operand = m->n_values++;
-    if (!m->how.by_point)
-        tape_begin_program(m, s);
+    if (m->how.by_point)
+        return;
+    tape_kernel *function = tape_function(m, s);
+    s->run = function ? function : s->run;
+    tape_begin_program(m, s);
 }
 
 static void add_steps(struct tape_maker *m)
@@ -231,13 +233,24 @@ static void add_steps(struct tape_maker *m)
     }
 }
 
+static size_t greater(size_t a, size_t b)
+{
+    return a > b ? a : b;
+}
+
+/* What a work space needs. */
 static void measure(struct tape *t)
 {
     for (size_t i = 0; i < t->steps.n; i++) {
         struct tape_step *s = &t->steps.at[i];
-        t->most_args = s->args.n > t->most_args ? s->args.n : t->most_args;
+        t->most_args = greater(t->most_args, s->args.n);
         if (s->run == tape_average_run)
             s->room = (uint32_t)t->n_rooms++;
+        if (s->run != tape_diagram_by_point)
+            continue;
+        const struct diagram *d = s->more;
+        t->most_at = greater(t->most_at, 4 * (size_t)d->n_variables);
+        t->most_room = greater(t->most_room, tape_tile_rows(d) * tape_tile(d) + d->n_roots);
     }
 }
 
@@ -257,8 +270,9 @@ struct tape *tape_new_as(struct arena *a, struct eval *v, enum isa isa,
     for (size_t i = 0; i < n_roots; i++)
         *array_push(m.arena, &m.roots) = tape_operand(&m, roots[i]);
     tape_fuse(&m);
+    tape_split(&m);
     tape_place(&m);
-    tape_lower(t);
+    tape_lower(&m);
     measure(t);
     arena_free(m.arena);
     return t;

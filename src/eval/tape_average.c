@@ -85,7 +85,7 @@ static void take_arguments(const struct tape_averaged *t, struct tape_average *v
     }
 }
 
-struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s)
+struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s, enum isa isa)
 {
     const struct tape_averaged *t = s->more;
     size_t n = t->diagram->n_variables;
@@ -101,7 +101,8 @@ struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s
                                 .q = v->q,
                                 .course = t->course,
                                 .x = (const double(*)[COURSE_ARGS])v->x,
-                                .windows = t->windows};
+                                .windows = t->windows,
+                                .isa = isa};
     take_arguments(t, v, t->at);
     v->averages = averages_new(a, &v->what);
     averages_take(v->averages, &v->what, NULL, v->results);
@@ -111,11 +112,12 @@ struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s
 static void read_lane(const struct tape_step *s, const struct tape_work *w, size_t lane, double *at)
 {
     for (size_t i = 0; i < s->args.n; i++)
-        at[i] = s->args.at[i] == TAPE_NONE ? 1 - at[i - 1] : tape_read(s, w->row, i, lane);
+        at[i] = s->args.at[i] == TAPE_NONE ? 1 - at[i - 1] : tape_read(s, w, i, lane);
 }
 
-void tape_average_run(const struct tape_step *s, struct tape_work *w, size_t n)
+void tape_average_run(const struct tape_call *c, struct tape_work *w, size_t n)
 {
+    const struct tape_step *s = c->more;
     const struct tape_averaged *t = s->more;
     struct tape_average *v = w->averages[s->room];
     (void)n;

@@ -267,6 +267,7 @@ size_t tape_operands(enum tape_code c)
     case TAPE_plus_product:
     case TAPE_blend:
     case TAPE_add_product:
+    case TAPE_resume:
     case TAPE_reach: return 2;
     case TAPE_take:
     case TAPE_add_one:

@@ -8,15 +8,15 @@
 #include "eval/tape_vector.h"
 
 /* An operand before the loop, and at lane i. */
-#define BEFORE_s(x, k) const double *x = w->row[s->args.at[k]]
-#define BEFORE_c(x, k) const vector x = all(*w->row[s->args.at[k]])
+#define BEFORE_s(x, k) const double *x = w->row[c->rows[1 + k]]
+#define BEFORE_c(x, k) const vector x = all(w->constant[c->rows[1 + k]])
 #define AT_s(x) load(x + i)
 #define AT_c(x) x
 
 #define KERNEL(name, before, result)                                                               \
-    static void name(const struct tape_step *s, struct tape_work *w, size_t n)                     \
+    static void name(const struct tape_call *c, struct tape_work *w, size_t n)                     \
     {                                                                                              \
-        double *to = w->row[s->to.at[0]];                                                          \
+        double *to = w->row[c->rows[0]];                                                           \
         before;                                                                                    \
         for (size_t i = 0; i < n; i += WIDTH)                                                      \
             store(to + i, result);                                                                 \
@@ -63,16 +63,25 @@ COMPLEMENT_TIMES(s, c)
 
 /* ---- any program ---- */
 
-/* One code for a tile of four vectors. */
-#define EACH(DO) DO(0) DO(1) DO(2) DO(3)
-enum { TILE = 4 * WIDTH };
+/* One code for a tile of eight vectors. */
+#define EACH(DO) DO(0) DO(1) DO(2) DO(3) DO(4) DO(5) DO(6) DO(7)
+#define EACH_OF(DO, code)                                                                          \
+    DO(code, 0)                                                                                    \
+    DO(code, 1)                                                                                    \
+    DO(code, 2)                                                                                    \
+    DO(code, 3)                                                                                    \
+    DO(code, 4)                                                                                    \
+    DO(code, 5)                                                                                    \
+    DO(code, 6)                                                                                    \
+    DO(code, 7)
+enum { TILE = 8 * WIDTH };
 
 #define FIRST_s(k) load(first + k * WIDTH)
 #define FIRST_c(k) all_first
 #define SECOND_s(k) load(second + k * WIDTH)
 #define SECOND_c(k) all_second
 #define READ_s(x) const double *x = w->row[*arg++] + i
-#define READ_c(x) const vector all_##x = all(*w->row[*arg++])
+#define READ_c(x) const vector all_##x = all(w->constant[*arg++])
 
 #define CASE(name, form, body)                                                                     \
     case TAPE_FORMS *TAPE_##name + form: {                                                         \
@@ -112,6 +121,14 @@ enum { TILE = 4 * WIDTH };
 #define ADD_ONE_s(k) add_to(&s##k, &l##k, FIRST_s(k));
 #define ADD_ONE_c(k) add_to(&s##k, &l##k, FIRST_c(k));
 #define END_SUM(k) a##k = s##k + l##k;
+#define RESUME_AT(k, sum, rest) s##k = sum, l##k = rest;
+#define RESUME_ss(k) RESUME_AT(k, FIRST_s(k), SECOND_s(k))
+#define RESUME_cs(k) RESUME_AT(k, FIRST_c(k), SECOND_s(k))
+#define RESUME_sc(k) RESUME_AT(k, FIRST_s(k), SECOND_c(k))
+#define RESUME_cc(k) RESUME_AT(k, FIRST_c(k), SECOND_c(k))
+#define END_PART(k)                                                                                \
+    a##k = s##k;                                                                                   \
+    store(lost + k * WIDTH, l##k);
 #define UNITE(k) s##k += a##k * (1 - s##k);
 #define UNITE_ONE_s(k) s##k += FIRST_s(k) * (1 - s##k);
 #define UNITE_ONE_c(k) s##k += FIRST_c(k) * (1 - s##k);
@@ -119,25 +136,25 @@ enum { TILE = 4 * WIDTH };
 #define KEY_s(k) s##k = FIRST_s(k);
 #define KEY_c(k) s##k = FIRST_c(k);
 #define END_LOOKUP(k) a##k = select(s##k == s##k, a##k, s##k);
-#define ALONE_CASE(code)                                                                           \
-    CASE(code, 0, a0 = op_##code(a0); a1 = op_##code(a1); a2 = op_##code(a2); a3 = op_##code(a3))
+#define ALONE_AT(code, k) a##k = op_##code(a##k);
+#define WITH_s(code, k) a##k = op_##code(a##k, FIRST_s(k));
+#define WITH_c(code, k) a##k = op_##code(a##k, FIRST_c(k));
+#define ALONE_CASE(code) CASE(code, 0, EACH_OF(ALONE_AT, code))
 #define WITH_CASES(code)                                                                           \
-    CASE(code, 0, READ_s(first); a0 = op_##code(a0, FIRST_s(0)); a1 = op_##code(a1, FIRST_s(1));   \
-         a2 = op_##code(a2, FIRST_s(2)); a3 = op_##code(a3, FIRST_s(3)))                           \
-    CASE(code, 1, READ_c(first); a0 = op_##code(a0, all_first); a1 = op_##code(a1, all_first);     \
-         a2 = op_##code(a2, all_first); a3 = op_##code(a3, all_first))
+    CASE(code, 0, READ_s(first); EACH_OF(WITH_s, code))                                            \
+    CASE(code, 1, READ_c(first); EACH_OF(WITH_c, code))
 #define STORE(k) store(to + i + k * WIDTH, a##k);
 #define DECLARE(k) vector a##k = {0}, s##k = {0}, l##k = {0};
 
-static void program(const struct tape_step *s, struct tape_work *w, size_t n)
+static void program(const struct tape_call *c, struct tape_work *w, size_t n)
 {
-    const struct tape_program *p = s->more;
-    double *to = w->row[s->to.at[0]];
+    const struct tape_program *p = c->more;
+    double *to = w->row[c->rows[0]];
     for (size_t i = 0; i < n; i += TILE) {
-        const uint32_t *arg = s->args.at;
+        const uint32_t *arg = c->rows + 1;
         EACH(DECLARE)
-        for (size_t c = 0; c < p->n; c++)
-            switch (p->code[c]) {
+        for (size_t k = 0; k < p->n; k++)
+            switch (p->code[k]) {
                 TAPE_CODES_0(ALONE_CASE)
                 TAPE_CODES_1(WITH_CASES)
                 CASES_1(take, TAKE)
@@ -148,6 +165,8 @@ static void program(const struct tape_step *s, struct tape_work *w, size_t n)
                 CASES_1(add_one, ADD_ONE)
                 CASES_2(add_product, ADD_PRODUCT)
                 CASE_0(end_sum, END_SUM)
+                CASES_2(resume, RESUME)
+                CASE(end_part, 0, double *lost = w->row[*arg++] + i; EACH(END_PART))
                 CASE_0(begin_either, BEGIN_SUM)
                 CASE_0(unite, UNITE)
                 CASES_1(unite_one, UNITE_ONE)
@@ -179,5 +198,6 @@ const struct tape_kernels ISA_NAME(tape_kernels) = {
     .complement_times = {complement_times_ss, NULL, complement_times_sc},
     .blend = {blend_sss, NULL, blend_scs, NULL, blend_ssc, NULL, blend_scc},
     .program = program,
+    .diagram = ISA_NAME(tape_diagram),
 };
 /* clang-format on */

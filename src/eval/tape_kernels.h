@@ -4,6 +4,7 @@
  * Arithmetic is written as a program of codes that work on one value, `a`, which is kept in
  * registers from the first code to the last; codes take their operands one after the other from
  * the arguments of the step. Between begin_sum and end_sum terms are added to a compensated sum;
+ * (a part of it between resume and end_part);
  * between begin_either and end_either they are united; between key and end_lookup each `reach`
  * takes its value where the key has come to its bound. Short programs that occur often have loops
  * of their own.
@@ -44,6 +45,8 @@
     X(add_one)     /* b */                                                                         \
     X(add_product) /* b * c */                                                                     \
     X(end_sum)                                                                                     \
+    X(resume)   /* a sum, from b and what was lost of it, c */                                     \
+    X(end_part) /* a is the sum so far; the second result what was lost of it */                   \
     X(begin_either)                                                                                \
     X(unite)     /* a */                                                                           \
     X(unite_one) /* b */                                                                           \
@@ -89,8 +92,8 @@ struct tape_kernels {
     tape_kernel *pair[TAPE_PAIR_COUNT][TAPE_FORMS_3];
     tape_kernel *complement_times[TAPE_FORMS]; /* take, complement, times */
     tape_kernel *blend[TAPE_FORMS_3];          /* take, blend */
-    tape_kernel *program;                      /* any; `more` is a struct tape_program */
-    tape_kernel *diagram;                      /* `more` is a struct tape_leaves */
+    tape_kernel *program; /* any; `more` of the call is a struct tape_program */
+    tape_kernel *diagram; /* args: p, then q of each variable; TAPE_NONE: 1 - p */
 };
 
 struct tape_program {
@@ -98,7 +101,22 @@ struct tape_program {
     const uint8_t *code; /* TAPE_FORMS * code + form */
 };
 
-#define X(name, needs) extern const struct tape_kernels tape_kernels_##name;
+/* A diagram's rows take this many lanes at a time; the doubles and the pointers of its tile. */
+enum { TAPE_LONG_TILE = TAPE_GROUP, TAPE_SHORT_TILE = TAPE_GROUP / 2, TAPE_TILE_ROWS = 48 };
+
+static inline size_t tape_tile_rows(const struct diagram *d)
+{
+    return d->n_nodes + 2 + 2 * (size_t)d->n_variables;
+}
+
+static inline size_t tape_tile(const struct diagram *d)
+{
+    return tape_tile_rows(d) <= TAPE_TILE_ROWS ? TAPE_LONG_TILE : TAPE_SHORT_TILE;
+}
+
+#define X(name, needs)                                                                             \
+    extern const struct tape_kernels tape_kernels_##name;                                          \
+    tape_kernel tape_diagram_##name;
 ISAS(X)
 #undef X
 

@@ -4,6 +4,19 @@
 #include "eval/tape_kernels.h"
 
 #include <assert.h>
+#include <string.h>
+
+/* How many programs are looked through for an equal one. */
+enum { LOOK_BACK = 64 };
+
+struct lowering_tape {
+    struct arena *arena;
+    struct tape *tape;
+    const struct tape_kernels *kernels;
+    bool by_point;
+    ARRAY(const struct tape_program *) programs;
+    struct tape_codes codes;
+};
 
 static const struct tape_kernels *kernels_of(enum isa isa)
 {
@@ -60,31 +73,71 @@ static unsigned form_of(const struct tape_step *s, size_t first, size_t n)
     return form;
 }
 
-static void lower_program(struct tape *t, struct tape_step *s)
+/* Equal programs are one, so that what many figures have in common stays in the cache. */
+static const struct tape_program *program_of(struct lowering_tape *l, const struct tape_step *s)
 {
-    struct tape_program *p = NEW(t->arena, struct tape_program);
-    uint8_t *code = NEW_ARRAY(t->arena, s->codes.n, uint8_t);
+    struct tape_program p = {s->codes.n, NULL};
+    l->codes.n = 0;
     size_t arg = 0;
     for (size_t i = 0; i < s->codes.n; i++) {
         size_t n = tape_operands((enum tape_code)s->codes.at[i]);
-        code[i] = (uint8_t)(TAPE_FORMS * s->codes.at[i] + form_of(s, arg, n));
+        *array_push(l->arena, &l->codes) =
+            (uint8_t)(TAPE_FORMS * s->codes.at[i] + form_of(s, arg, n));
         arg += n;
     }
     assert(arg == s->args.n);
-    *p = (struct tape_program){s->codes.n, code};
-    s->more = p;
-    s->run = kernels_of(t->isa)->program;
+    for (size_t i = l->programs.n; i-- > 0 && l->programs.n - i <= LOOK_BACK;)
+        if (l->programs.at[i]->n == p.n && memcmp(l->programs.at[i]->code, l->codes.at, p.n) == 0)
+            return l->programs.at[i];
+    p.code = arena_copy(l->tape->arena, l->codes.at, p.n);
+    return *array_push(l->arena, &l->programs) = arena_copy(l->tape->arena, &p, sizeof p);
 }
 
-void tape_lower(struct tape *t)
+static void lower(struct lowering_tape *l, struct tape_step *s, struct tape_call *c)
 {
+    unsigned form = s->args.n <= 3 ? form_of(s, 0, s->args.n) : 0;
+    *c = (struct tape_call){.run = s->run, .more = s};
+    if (s->run == tape_diagram_by_point && !l->by_point)
+        c->run = l->kernels->diagram;
+    if (s->codes.n == 0)
+        return;
+    c->run = loop_of(l->kernels, &s->codes, form);
+    if (!c->run) {
+        c->run = l->kernels->program;
+        c->more = program_of(l, s);
+    }
+}
+
+/* The rows of all calls, one after the other: a second result comes last; constants are counted
+ * from 0. */
+static void lay_rows(const struct tape *t)
+{
+    size_t n = 0;
+    for (size_t i = 0; i < t->steps.n; i++)
+        n += t->steps.at[i].codes.n ? t->steps.at[i].to.n + t->steps.at[i].args.n : 0;
+    uint32_t *rows = NEW_ARRAY(t->arena, n, uint32_t);
     for (size_t i = 0; i < t->steps.n; i++) {
-        struct tape_step *s = &t->steps.at[i];
+        const struct tape_step *s = &t->steps.at[i];
+        t->calls[i].rows = rows;
         if (s->codes.n == 0)
             continue;
-        unsigned form = s->args.n <= 3 ? form_of(s, 0, s->args.n) : 0;
-        s->run = loop_of(kernels_of(t->isa), &s->codes, form);
-        if (!s->run)
-            lower_program(t, s);
+        *rows++ = s->to.at[0];
+        for (size_t k = 0; k < s->args.n; k++) {
+            uint32_t at = s->args.at[k];
+            *rows++ = at < s->first_constant ? at : at - s->first_constant;
+        }
+        if (s->to.n > 1)
+            *rows++ = s->to.at[1];
     }
+}
+
+void tape_lower(struct tape_maker *m)
+{
+    struct tape *t = m->tape;
+    struct lowering_tape l = {
+        .arena = m->arena, .tape = t, .kernels = kernels_of(t->isa), .by_point = m->how.by_point};
+    t->calls = NEW_ARRAY(t->arena, t->steps.n, struct tape_call);
+    for (size_t i = 0; i < t->steps.n; i++)
+        lower(&l, &t->steps.at[i], &t->calls[i]);
+    lay_rows(t);
 }

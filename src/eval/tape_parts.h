@@ -2,7 +2,7 @@
 /* What a tape is made of, inside src/eval (tape.h).
  *
  * A step names what it reads and writes by *rows*. The rows of a run are, in this order: the slots,
- * the inputs, the roots, and the constants, of which each is one double and not a row of lanes.
+ * the inputs and the roots; behind them constants are numbered, which are no rows of lanes.
  * While a tape is made, values are numbered instead: inputs first, then what steps make, and
  * constants with TAPE_CONSTANT added.
  *
@@ -19,9 +19,16 @@ enum { TAPE_GROUP = 64 };
 #define TAPE_CONSTANT 0x80000000u
 #define TAPE_NONE UINT32_MAX
 
-struct tape_step;
+/* A step as it is run: what it writes, then what it reads, rows or numbers of constants. What is
+ * run lies in the order in which it is read. */
+struct tape_call;
 /* n is a multiple of TAPE_GROUP; w->count of these lanes are asked for. */
-typedef void tape_kernel(const struct tape_step *s, struct tape_work *w, size_t n);
+typedef void tape_kernel(const struct tape_call *c, struct tape_work *w, size_t n);
+struct tape_call {
+    tape_kernel *run;
+    const uint32_t *rows; /* of the result, then of the arguments */
+    const void *more;     /* the kernel's own: its program, or the step */
+};
 
 /* Rows that are read, and written. */
 struct tape_rows ARRAY_BODY(uint32_t);
@@ -45,8 +52,9 @@ struct tape {
     struct arena *arena;
     const struct graph *g;
     enum isa isa;
-    size_t n_in, n_roots, n_slots, n_rooms, most_args, most_work;
+    size_t n_in, n_roots, n_slots, n_rooms, most_args, most_room, most_at;
     ARRAY(struct tape_step) steps;
+    struct tape_call *calls;
     ARRAY(double) constants;
     struct tape_rows roots; /* the row of each; its own where a step writes into it */
 };
@@ -54,16 +62,20 @@ struct tape {
 struct tape_work {
     const struct tape *tape;
     size_t block, count;
-    double **row;           /* constants are only read */
+    double **row;
+    const double *constant;
     double **slot, **spare; /* rows of slots; of inputs and roots for a broken group */
-    double *x;              /* scratch: arguments of one lane, and most_work more */
+    double *x;              /* scratch: arguments of one lane */
+    double *room;      /* scratch of diagrams: most_room doubles, from a line of the cache on */
+    const double **at; /* scratch of diagrams: most_at rows */
     struct tape_average **averages;
 };
 
-static inline double tape_read(const struct tape_step *s, double *const *row, size_t i, size_t lane)
+static inline double tape_read(const struct tape_step *s, const struct tape_work *w, size_t i,
+                               size_t lane)
 {
     uint32_t at = s->args.at[i];
-    return row[at][at < s->first_constant ? lane : 0];
+    return at < s->first_constant ? w->row[at][lane] : w->constant[at - s->first_constant];
 }
 
 /* Lane by lane, by the point rule of the op table: for any operation but DIAGRAM and PICK. */
@@ -76,7 +88,7 @@ tape_kernel tape_diagram_by_point;
 struct tape_average;
 struct tape_maker;
 void tape_average_begin(struct tape_maker *m, struct tape_step *s, node_id n);
-struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s);
+struct tape_average *tape_average_new(struct arena *a, const struct tape_step *s, enum isa isa);
 tape_kernel tape_average_run;
 
 /* ---- making ---- */
@@ -116,17 +128,21 @@ uint32_t tape_constant(struct tape_maker *m, double x);
 uint32_t tape_operand(struct tape_maker *m, node_id n);
 bool tape_is_given(const struct tape_maker *m, node_id n);
 
+/* The kernel of a function over lanes (tape_functions.c); NULL: not that. Arguments are values. */
+tape_kernel *tape_function(const struct tape_maker *m, const struct tape_step *s);
 /* The program of an operation whose arguments are read already (tape_fuse.c); some have none. */
 void tape_begin_program(struct tape_maker *m, struct tape_step *s);
 /* Makes one step of several where a value is used only once. */
 void tape_fuse(struct tape_maker *m);
+/* Takes long sums apart (tape_split.c). */
+void tape_split(struct tape_maker *m);
 /* Does the program have a loop of its own? */
 bool tape_has_loop(const struct tape_codes *codes);
 
 /* Gives each value its row (tape_slots.c). */
 void tape_place(struct tape_maker *m);
 /* Chooses the kernels of programs, whose arguments are rows (tape_lower.c). */
-void tape_lower(struct tape *t);
+void tape_lower(struct tape_maker *m);
 
 struct tape *tape_new_as(struct arena *a, struct eval *v, enum isa isa,
                          const struct tape_inputs *in, size_t n_roots, const node_id *roots,

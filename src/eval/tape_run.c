@@ -10,19 +10,26 @@
 /* What the slots may take of the first cache, and how few or many lanes are worth a step. */
 enum { CACHE = 24 * 1024, FEWEST = 64, MOST = 512 };
 
+/* Doubles in a line of the cache. */
+enum { LINE = 8 };
+
 size_t tape_block(const struct tape *t)
 {
-    size_t rows = t->n_slots + t->n_in + t->n_roots;
-    size_t n = rows ? CACHE / sizeof(double) / rows : MOST;
+    size_t n = t->n_slots ? CACHE / sizeof(double) / t->n_slots : MOST;
     n -= n % TAPE_GROUP;
     return n < FEWEST ? FEWEST : n > MOST ? MOST : n;
 }
 
+/* Rows begin with a line of the cache, and each with another of its sets, so that the same lane of
+ * two rows never is at the same place of two pages. */
 static double **new_rows(struct arena *a, size_t n, size_t length)
 {
     double **row = NEW_ARRAY(a, n, double *);
+    size_t step = length + LINE;
+    double *all = NEW_ARRAY(a, n * step + LINE, double);
+    size_t beyond = (uintptr_t)all / sizeof *all % LINE;
     for (size_t i = 0; i < n; i++)
-        row[i] = NEW_ARRAY(a, length, double);
+        row[i] = all + (LINE - beyond) + i * step;
     return row;
 }
 
@@ -34,33 +41,33 @@ static size_t whole_groups(size_t n)
 struct tape_work *tape_work_new(struct arena *a, const struct tape *t, size_t block)
 {
     struct tape_work *w = NEW(a, struct tape_work);
-    size_t first_constant = t->n_slots + t->n_in + t->n_roots;
-    *w = (struct tape_work){.tape = t, .block = block};
-    w->row = NEW_ARRAY(a, first_constant + t->constants.n, double *);
+    *w = (struct tape_work){.tape = t, .block = block, .constant = t->constants.at};
+    w->row = NEW_ARRAY(a, t->n_slots + t->n_in + t->n_roots, double *);
     w->slot = new_rows(a, t->n_slots, whole_groups(block + TAPE_GROUP - 1));
     w->spare = new_rows(a, t->n_in + t->n_roots, TAPE_GROUP);
-    w->x = NEW_ARRAY(a, t->most_args + t->most_work, double);
+    w->x = NEW_ARRAY(a, t->most_args, double);
+    w->room = *new_rows(a, 1, t->most_room);
+    w->at = NEW_ARRAY(a, t->most_at, const double *);
     w->averages = NEW_ARRAY(a, t->n_rooms, struct tape_average *);
     for (size_t i = 0; i < t->n_slots; i++)
         w->row[i] = w->slot[i];
-    for (size_t i = 0; i < t->constants.n; i++)
-        w->row[first_constant + i] = (double *)&t->constants.at[i];
     for (size_t i = 0; i < t->steps.n; i++)
         if (t->steps.at[i].room != TAPE_NONE)
-            w->averages[t->steps.at[i].room] = tape_average_new(a, &t->steps.at[i]);
+            w->averages[t->steps.at[i].room] = tape_average_new(a, &t->steps.at[i], t->isa);
     return w;
 }
 
 /* Roots that no step writes: constants, inputs, and what is a root already. */
-static void copy_roots(const struct tape *t, double *const *row, size_t n)
+static void copy_roots(const struct tape *t, const struct tape_work *w, size_t n)
 {
     uint32_t first = (uint32_t)(t->n_slots + t->n_in), constants = first + (uint32_t)t->n_roots;
+    double *const *row = w->row;
     for (uint32_t k = 0; k < t->n_roots; k++) {
         uint32_t from = t->roots.at[k];
         if (from == first + k)
             continue;
         for (size_t i = 0; i < n; i++)
-            row[first + k][i] = row[from][from < constants ? i : 0];
+            row[first + k][i] = from < constants ? row[from][i] : w->constant[from - constants];
     }
 }
 
@@ -69,8 +76,8 @@ static void run_steps(const struct tape *t, struct tape_work *w, size_t n, size_
 {
     w->count = count;
     for (size_t i = 0; i < t->steps.n; i++)
-        t->steps.at[i].run(&t->steps.at[i], w, n);
-    copy_roots(t, w->row, count);
+        t->calls[i].run(&t->calls[i], w, n);
+    copy_roots(t, w, count);
 }
 
 static void run_whole(const struct tape *t, struct tape_work *w, size_t n, const double *const *in,

@@ -4,12 +4,7 @@
  * A window is cut at the resets of the courses of variables that occur in the diagram. On a piece
  * everything is a sum of exponentials, which Gauss-Legendre integrates exactly to rounding, in
  * equal parts where the exponents ask for it. An exponential that has died away asks for nothing
- * any more.
- *
- * Points are gathered in lanes, and courses and diagram are worked through for all lanes of a full
- * set at a time. Each result is a sum over its points in the order of time, whatever set they were
- * in. Where there will be a next time, pieces and sets are kept; a set counts again when its points
- * are the same, and then only what has changed is computed anew.
+ * any more. Each result is a sum over its points in the order of time, whatever set they were in.
  *
  * Owns its arrays in the arena it was given. */
 #include "graph/average_parts.h"
@@ -20,185 +15,17 @@
 
 static const double MOST_RESETS = 1e6, DEAD = 80;
 
-/* What is kept at the most: lanes of probabilities, and stretches of courses. */
-enum { MOST_LANES = 1 << 13, MOST_STRETCHES = 1 << 16 };
-
-/* ---- the pieces of a window ---- */
-
-double average_grain(struct window w)
-{
-    return 1e-12 * fmax(fabs(w.from), fabs(w.to));
-}
-
-double average_piece_end(size_t n, const struct course *const *courses, struct window w, double at)
-{
-    double grain = average_grain(w), end = w.to;
-    for (size_t i = 0; i < n; i++)
-        end = fmin(end, course_stretch(courses[i], at + grain).next);
-    return end < w.to - grain ? end : w.to;
-}
-
-/* Room for the stretches of a piece: for good, or until so many more pieces have come that none of
- * them is in the set that is gathered. */
-static struct stretch *room_for_stretches(struct averages *v, bool stays)
-{
-    if (stays)
-        return NEW_ARRAY(v->arena, v->n_varying, struct stretch);
-    struct stretch **room = &v->passing[v->n_passing++ % (LANES + 1)];
-    if (!*room)
-        *room = NEW_ARRAY(v->arena, v->n_varying, struct stretch);
-    return *room;
-}
-
-static struct piece make_piece(struct averages *v, size_t index, size_t window, double begin)
-{
-    struct window w = v->windows.at[window];
-    bool stays = v->keeps && index == v->pieces.n && (index + 1) * v->n_varying <= MOST_STRETCHES;
-    struct stretch *now = room_for_stretches(v, stays);
-    for (size_t i = 0; i < v->n_varying; i++)
-        now[i] = course_stretch(v->courses[i], begin + average_grain(w));
-    struct piece p = {window, begin, average_piece_end(v->n_varying, v->courses, w, begin), now};
-    if (stays)
-        *array_push(v->arena, &v->pieces) = p;
-    return p;
-}
-
-/* ---- the diagram in lanes ---- */
-
-static void mix_arms(double *restrict to, const double *restrict p, const double *restrict q,
-                     const double *restrict high, const double *restrict low)
-{
-    for (int i = 0; i < LANES; i++)
-        to[i] = p[i] * high[i] + q[i] * low[i];
-}
-
-static void evaluate_lanes(struct averages *v)
-{
-    const struct diagram *d = v->diagram;
-    for (size_t i = 0; i < d->n_nodes; i++) {
-        const struct diagram_node *node = &d->nodes[i];
-        mix_arms(v->work[i + 2], v->p[node->variable], v->q[node->variable], v->work[node->high],
-                 v->work[node->low]);
-    }
-}
+/* ---- results ---- */
 
 static void add_results(struct averages *v, void *ctx)
 {
-    double *to = ctx;
+    double *results = ctx;
     const struct diagram *d = v->diagram;
-    for (size_t i = 0; i < v->points.n; i++) {
-        double *results = to + v->points.window[i] * d->n_roots;
-        for (size_t k = 0; k < d->n_roots; k++)
-            results[k] += v->points.weight[i] * v->work[d->roots[k]][i];
-    }
-}
-
-/* ---- sets of points ---- */
-
-static double positive(double x)
-{
-    return x > 0 ? x : 0;
-}
-
-static double greater(double x, double y)
-{
-    return x > y ? x : y;
-}
-
-void averages_moments(const struct averages *v, size_t i, struct moments *at)
-{
     const struct gathered *points = &v->points;
-    double born = v->varying[i].course->born;
-    *at = (struct moments){0};
-    for (size_t k = 0; k < points->n; k++) {
-        const struct stretch *now = &points->now[k][i];
-        at->since[k] = positive(points->t[k] - now->origin);
-        at->age[k] = positive(points->t[k] - born);
-        at->left[k] = !now->fresh;
-        at->latest_since = greater(at->latest_since, at->since[k]);
-        at->latest_age = greater(at->latest_age, at->age[k]);
-    }
-}
-
-static void make_set(struct averages *v, struct kept_set *s)
-{
-    s->p = NEW_ARRAY(v->arena, v->n_varying, lanes);
-    s->q = NEW_ARRAY(v->arena, v->n_varying, lanes);
-    s->at = NEW_ARRAY(v->arena, v->n_varying, struct moments);
-    s->edition = NEW_ARRAY(v->arena, v->n_varying, uint64_t);
-}
-
-static struct kept_set *set_of(struct averages *v)
-{
-    if (v->set < v->sets.n)
-        return &v->sets.at[v->set];
-    if (v->keeps && (v->set + 1) * v->n_varying <= MOST_LANES) {
-        make_set(v, array_push(v->arena, &v->sets));
-        return array_last(&v->sets);
-    }
-    v->passing_set.n = 0;
-    return &v->passing_set;
-}
-
-static bool has_points(const struct kept_set *s, const struct gathered *points)
-{
-    size_t size = points->n * sizeof *points->t;
-    return s->n == points->n && memcmp(s->t, points->t, size) == 0 &&
-           memcmp(s->begin, points->begin, size) == 0;
-}
-
-/* Makes the set one of the points that are gathered: nothing in it counts any more. */
-static void begin_set(struct averages *v, struct kept_set *s)
-{
-    s->n = v->points.n;
-    memcpy(s->t, v->points.t, sizeof s->t);
-    memcpy(s->begin, v->points.begin, sizeof s->begin);
-    for (size_t i = 0; i < v->n_varying; i++) {
-        s->edition[i] = 0;
-        averages_moments(v, i, &s->at[i]);
-    }
-}
-
-/* The probabilities of varying variables at the points, of which those that stay are there where
- * the set was met before. */
-static void place_courses(struct averages *v)
-{
-    struct kept_set *s = set_of(v);
-    if (!has_points(s, &v->points))
-        begin_set(v, s);
-    for (size_t i = 0; i < v->n_varying; i++) {
-        const struct varying *one = &v->varying[i];
-        v->p[one->variable] = s->p[one->same];
-        v->q[one->variable] = s->q[one->same];
-        if (one->same != i || s->edition[i] == one->edition)
-            continue;
-        s->edition[i] = one->edition;
-        course_lanes(&one->versions, &s->at[i], s->p[i], s->q[i]);
-    }
-}
-
-static void flush(struct averages *v)
-{
-    if (v->points.n == 0)
-        return;
-    place_courses(v);
-    evaluate_lanes(v);
-    v->take(v, v->ctx);
-    v->points.n = 0;
-    v->set++;
-}
-
-static void add_point(struct averages *v, const struct piece *p, double t, double weight)
-{
-    struct gathered *points = &v->points;
-    size_t k = points->n++;
-    points->t[k] = t;
-    points->begin[k] = p->begin;
-    points->weight[k] = weight;
-    points->window[k] = p->window;
-    points->now[k] = p->now;
-    if (points->n == LANES)
-        flush(v);
+    size_t begin = 0;
+    for (size_t i = 0; i < points->n_runs; begin = points->runs[i++].end)
+        v->kernels->add(begin, points->runs[i].end, points->weight, d->n_roots, d->roots, v->work,
+                        results + points->runs[i].window * d->n_roots);
 }
 
 /* ---- parts of a piece ---- */
@@ -208,14 +35,13 @@ static void exponents(const struct averages *v, const struct stretch *now, doubl
                       double sum[PACES])
 {
     for (int k = 0; k < PACES; k++)
-        sum[k] = 0;
-    for (size_t i = 0; i < v->n_varying; i++) {
-        const struct pace *pace = &v->varying[i].pace;
-        bool resets = pace->slowest_reset * (t - now[i].origin) < DEAD;
-        bool ages =
-            pace->unreset[0] > 0 && pace->slowest_unreset * (t - v->varying[i].course->born) < DEAD;
-        for (int k = 0; k < PACES; k++)
-            sum[k] += (resets ? pace->reset[k] : 0) + (ages ? pace->unreset[k] : 0);
+        sum[k] = v->lasting[k];
+    for (size_t i = 0; i < v->n_fading; i++) {
+        const struct fading *f = &v->fading[i];
+        double begin = f->unreset ? v->courses[f->timing]->born : now[f->timing].origin;
+        if (f->slowest * (t - begin) < DEAD)
+            for (int k = 0; k < PACES; k++)
+                sum[k] += f->exponents[k];
     }
 }
 
@@ -231,8 +57,8 @@ static void add_piece(struct averages *v, const struct piece *p)
         next = parts > 1 ? at + (p->end - at) / parts : p->end;
         next = next > at && next < p->end ? next : p->end;
         for (size_t i = 0; i < rule->n; i++)
-            add_point(v, p, at + (next - at) * rule->nodes[i].at,
-                      rule->nodes[i].weight * (next - at) / (w.to - w.from));
+            averages_add_point(v, p, at + (next - at) * rule->nodes[i].at,
+                               rule->nodes[i].weight * (next - at) / (w.to - w.from));
     }
 }
 
@@ -242,15 +68,15 @@ static void add_windows(struct averages *v)
     v->set = 0;
     for (size_t k = 0; k < v->windows.n; k++) {
         struct window w = v->windows.at[k];
-        struct piece p = {k, w.from, w.from, NULL};
+        struct piece p = {.index = k, .window = k, .begin = w.from, .end = w.from};
         if (v->n_varying == 0)
-            add_point(v, &p, w.from, 1);
+            averages_add_point(v, &p, w.from, 1);
         for (; v->n_varying && p.end < w.to; index++) {
-            p = index < v->pieces.n ? v->pieces.at[index] : make_piece(v, index, k, p.end);
+            p = averages_next_piece(v, index, k, p.end);
             add_piece(v, &p);
         }
     }
-    flush(v);
+    averages_flush(v);
 }
 
 /* ---- values ---- */
@@ -278,12 +104,13 @@ static void take_still(struct averages *v, size_t i)
 }
 
 /* Whether it can be computed: finite, and in not too many pieces. */
-static bool is_sound(const struct averages *v, const struct varying *one)
+static bool is_sound(const struct averages *v, const struct moving *one)
 {
+    const struct course *c = v->courses[one->timing];
     double longest = 0;
     for (size_t k = 0; k < v->windows.n; k++)
         longest = fmax(longest, v->windows.at[k].to - v->windows.at[k].from);
-    if (one->course->first < INFINITY && !(longest / one->course->every <= MOST_RESETS))
+    if (c->first < INFINITY && !(longest / c->every <= MOST_RESETS))
         return false;
     for (size_t i = 0; i < one->versions.n; i++) {
         const double *x = one->versions.x[i];
@@ -296,7 +123,7 @@ static bool is_sound(const struct averages *v, const struct varying *one)
     return true;
 }
 
-static bool take_varying(struct averages *v, struct varying *one, bool changed)
+static bool take_varying(struct averages *v, struct moving *one, bool changed)
 {
     one->versions = versions_of(v->what, one->variable);
     if (!changed)
@@ -306,20 +133,21 @@ static bool take_varying(struct averages *v, struct varying *one, bool changed)
     if (!one->sound)
         return false;
     one->pace = average_pace(&one->versions);
-    v->extremes[one->variable] = average_extreme(one->course, &one->versions, &v->windows);
+    v->extremes[one->variable] =
+        average_extreme(v->kernels, &v->timings[one->timing].extremes, &one->versions);
     return true;
 }
 
-static bool are_equal(const struct varying *a, const struct varying *b)
+static bool are_equal(const struct moving *a, const struct moving *b)
 {
-    return a->course == b->course && a->versions.n == 1 && b->versions.n == 1 &&
+    return a->timing == b->timing && a->versions.n == 1 && b->versions.n == 1 &&
            memcmp(a->versions.x, b->versions.x, sizeof *a->versions.x) == 0;
 }
 
 static void find_equals(struct averages *v)
 {
     for (size_t i = 0; i < v->n_varying; i++) {
-        struct varying *one = &v->varying[i];
+        struct moving *one = &v->varying[i];
         one->same = i;
         for (size_t k = 0; k < i && one->same == i; k++)
             if (are_equal(&v->varying[k], one))
@@ -327,44 +155,132 @@ static void find_equals(struct averages *v)
     }
 }
 
-bool averages_pass(struct averages *v, const struct averaged *what, const bool *changed,
-                   void (*take)(struct averages *v, void *ctx), void *ctx)
+/* Exponents that are alive at the end of every piece count for all of them. */
+static void add_fading(struct averages *v, const struct moving *one, bool unreset)
+{
+    const struct pace *pace = &one->pace;
+    const struct moments *at = &v->timings[one->timing].extremes.at;
+    const double *x = unreset ? pace->unreset : pace->reset;
+    double slowest = unreset ? pace->slowest_unreset : pace->slowest_reset;
+    if (slowest * (unreset ? at->latest_age : at->latest_since) < DEAD)
+        for (int k = 0; k < PACES; k++)
+            v->lasting[k] += x[k];
+    else
+        v->fading[v->n_fading++] = (struct fading){x, slowest, one->timing, unreset};
+}
+
+static void find_fading(struct averages *v)
+{
+    v->n_fading = 0;
+    for (int k = 0; k < PACES; k++)
+        v->lasting[k] = 0;
+    for (size_t i = 0; i < v->n_varying; i++) {
+        const struct moving *one = &v->varying[i];
+        add_fading(v, one, false);
+        if (one->pace.unreset[0] > 0)
+            add_fading(v, one, true);
+    }
+}
+
+static bool take_values(struct averages *v, const bool *changed)
 {
     bool sound = true;
-    v->what = what;
-    v->take = take;
-    v->ctx = ctx;
-    for (size_t i = 0; i < v->diagram->n_variables; i++)
-        if (v->occurs[i] && !what->course[i] && (!changed || changed[i]))
-            take_still(v, i);
+    for (size_t i = 0; i < v->n_still; i++)
+        if (!changed || changed[v->still[i]])
+            take_still(v, v->still[i]);
     for (size_t i = 0; i < v->n_varying; i++) {
         bool is_new = !changed || changed[v->varying[i].variable];
         sound = take_varying(v, &v->varying[i], is_new) && sound;
     }
-    if (!sound)
-        return false;
-    find_equals(v);
-    v->reach = average_reach(v->diagram, v->extremes, v->order);
-    add_windows(v);
-    return true;
+    return sound;
+}
+
+bool averages_pass(struct averages *v, const struct averaged *what, const bool *changed,
+                   void (*take)(struct averages *v, void *ctx), void *ctx)
+{
+    v->what = what;
+    v->kernels = average_kernels(what->isa);
+    v->take = take;
+    v->ctx = ctx;
+    bool sound = take_values(v, changed);
+    if (sound) {
+        find_equals(v);
+        find_fading(v);
+        v->kernels->orders(v->n_rows, v->rows, v->extremes, v->order);
+        v->reach = average_reach(v->diagram->n_roots, v->diagram->roots, v->order);
+        v->kernels->rows(v->n_still_rows, v->rows, v->p, v->q, v->work);
+        add_windows(v);
+    }
+    v->begun = true;
+    return sound;
 }
 
 /* ---- beginning ---- */
 
-/* In the order of variables, those that occur. */
-static void find_varying(struct averages *v, const struct averaged *what)
+static bool are_same(const struct course *a, const struct course *b)
+{
+    return a->from == b->from && a->first == b->first && a->every == b->every &&
+           a->born == b->born && a->fresh == b->fresh;
+}
+
+static size_t timing_of(struct averages *v, const struct course *c)
+{
+    for (size_t i = 0; i < v->n_timings; i++)
+        if (are_same(v->courses[i], c))
+            return i;
+    v->courses[v->n_timings] = c;
+    return v->n_timings++;
+}
+
+static void find_variables(struct averages *v, const struct averaged *what)
 {
     const struct diagram *d = v->diagram;
-    v->occurs = NEW_ARRAY(v->arena, d->n_variables, bool);
-    v->varying = NEW_ARRAY(v->arena, d->n_variables, struct varying);
+    bool *occurs = NEW_ARRAY(v->arena, d->n_variables, bool);
+    v->still = NEW_ARRAY(v->arena, d->n_variables, size_t);
+    v->varying = NEW_ARRAY(v->arena, d->n_variables, struct moving);
     v->courses = NEW_ARRAY(v->arena, d->n_variables, const struct course *);
     for (size_t i = 0; i < d->n_nodes; i++)
-        v->occurs[d->nodes[i].variable] = true;
+        occurs[d->nodes[i].variable] = true;
     for (size_t i = 0; i < d->n_variables; i++) {
-        if (!v->occurs[i] || !what->course[i])
-            continue;
-        v->courses[v->n_varying] = what->course[i];
-        v->varying[v->n_varying++] = (struct varying){.variable = i, .course = what->course[i]};
+        if (occurs[i] && what->course[i])
+            v->varying[v->n_varying++] =
+                (struct moving){.variable = i, .timing = timing_of(v, what->course[i])};
+        else if (occurs[i])
+            v->still[v->n_still++] = i;
+    }
+}
+
+/* Their extremes, and that they start at `left` until a fresh one says otherwise. */
+static void make_timings(struct averages *v)
+{
+    size_t size = v->n_timings * sizeof *v->timings;
+    char *at = arena_alloc(v->arena, size + LANES_ALIGNED);
+    v->timings = (void *)(at + (-(uintptr_t)at & (LANES_ALIGNED - 1)));
+    for (size_t i = 0; i < v->n_timings; i++) {
+        struct timing *one = &v->timings[i];
+        one->course = v->courses[i];
+        fill(one->at.left, 1);
+        average_times(one->course, &v->windows, &one->extremes);
+    }
+}
+
+/* Rows that something varying moves come behind the others. */
+static void make_rows(struct averages *v, const struct averaged *what)
+{
+    const struct diagram *d = v->diagram;
+    bool *moves = NEW_ARRAY(v->arena, d->n_nodes + 2, bool);
+    v->rows = NEW_ARRAY(v->arena, d->n_nodes, struct row);
+    for (size_t i = 0; i < d->n_nodes; i++) {
+        const struct diagram_node *n = &d->nodes[i];
+        moves[i + 2] = what->course[n->variable] || moves[n->high] || moves[n->low];
+    }
+    for (int moving = 0; moving < 2; moving++) {
+        v->n_still_rows = v->n_rows;
+        for (size_t i = 0; i < d->n_nodes; i++) {
+            const struct diagram_node *n = &d->nodes[i];
+            if (moves[i + 2] == moving)
+                v->rows[v->n_rows++] = (struct row){(uint32_t)i + 2, n->variable, n->high, n->low};
+        }
     }
 }
 
@@ -372,16 +288,17 @@ static void make_room(struct averages *v)
 {
     size_t n = v->diagram->n_variables, n_nodes = v->diagram->n_nodes + 2;
     v->extremes = NEW_ARRAY(v->arena, n, struct extreme);
-    v->order = arena_array(v->arena, n_nodes, sizeof *v->order);
-    v->still_p = NEW_ARRAY(v->arena, n, lanes);
-    v->still_q = NEW_ARRAY(v->arena, n, lanes);
+    v->order = NEW_ARRAY(v->arena, n_nodes, orders);
+    v->fading = NEW_ARRAY(v->arena, 2 * v->n_varying, struct fading);
+    v->still_p = averages_lanes(v->arena, n);
+    v->still_q = averages_lanes(v->arena, n);
     v->p = NEW_ARRAY(v->arena, n, const double *);
     v->q = NEW_ARRAY(v->arena, n, const double *);
-    v->work = NEW_ARRAY(v->arena, n_nodes, lanes);
+    v->work = averages_lanes(v->arena, n_nodes);
     fill(v->work[1], 1);
+    v->order[1][0] = 1;
     for (size_t i = 0; i < n; i++)
         v->p[i] = v->still_p[i], v->q[i] = v->still_q[i];
-    make_set(v, &v->passing_set);
 }
 
 static struct averages *begin(struct arena *a, const struct averaged *what, bool keeps)
@@ -391,8 +308,12 @@ static struct averages *begin(struct arena *a, const struct averaged *what, bool
     v->diagram = what->diagram;
     v->windows = what->windows;
     v->keeps = keeps;
-    find_varying(v, what);
+    find_variables(v, what);
+    make_timings(v);
+    make_rows(v, what);
     make_room(v);
+    averages_make_pieces(v);
+    averages_make_sets(v);
     return v;
 }
 

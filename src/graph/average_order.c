@@ -14,7 +14,6 @@
 #include "graph/average_order.h"
 
 #include <math.h>
-#include <string.h>
 
 static const double COARSE = 1e-5, FINE = 1e-12;
 
@@ -52,25 +51,30 @@ static struct habits habits_of(const struct mixture *m)
     return h;
 }
 
-/* Right after the beginning, right after a reset, and just before the next. */
-struct extreme average_extreme(const struct course *c, const struct mixture *m,
-                               const struct windows *w)
+enum { YOUNG, LEFT, OLD };
+
+void average_times(const struct course *c, const struct windows *w, struct extreme_times *to)
 {
-    enum { YOUNG, LEFT, OLD };
-    struct moments at = {.left = {!c->fresh, 1, !c->fresh}};
-    struct habits h = habits_of(m);
-    lanes p, q;
     double age = 0;
+    *to = (struct extreme_times){.at = {.left = {!c->fresh, 1, !c->fresh}}, .fresh = c->fresh};
     for (size_t k = 0; k < w->n; k++)
         age = fmax(age, w->at[k].to - c->born);
-    at.since[OLD] = at.latest_since = oldest(c, w);
-    at.latest_age = age;
+    to->at.since[OLD] = to->at.latest_since = oldest(c, w);
+    to->at.latest_age = age;
     for (int i = 0; i < LANES; i++)
-        at.age[i] = age;
-    course_lanes(m, &at, p, q);
+        to->at.age[i] = age;
+}
+
+struct extreme average_extreme(const struct average_kernels *k, const struct extreme_times *t,
+                               const struct mixture *m)
+{
+    struct habits h = habits_of(m);
+    _Alignas(LANES_ALIGNED) lanes p;
+    _Alignas(LANES_ALIGNED) lanes q;
+    k->course(m, &t->at, p, q);
     return (struct extreme){.p = fmax(fmax(p[YOUNG], p[LEFT]), p[OLD]),
                             .q = h.falls ? fmax(q[LEFT], q[OLD]) : h.rest,
-                            .grows_true = !h.falls || c->fresh || h.ages,
+                            .grows_true = !h.falls || t->fresh || h.ages,
                             .grows_false = h.falls};
 }
 
@@ -121,27 +125,6 @@ struct pace average_pace(const struct mixture *m)
 
 /* ---- how many at a time ---- */
 
-/* Adds p times the parts of an arm, one order higher where it grows. */
-static void add_arm(double *to, const double *arm, double p, bool grows)
-{
-    enum { LAST = LEGENDRE_ORDERS - 1 };
-    for (int j = 0; j <= LAST; j++)
-        to[grows && j < LAST ? j + 1 : j] += p * arm[j];
-}
-
-static void node_orders(const struct diagram *d, const struct extreme *extremes,
-                        double (*part)[LEGENDRE_ORDERS])
-{
-    memset(part, 0, (d->n_nodes + 2) * sizeof *part);
-    part[1][0] = 1;
-    for (size_t i = 0; i < d->n_nodes; i++) {
-        const struct diagram_node *n = &d->nodes[i];
-        const struct extreme *e = &extremes[n->variable];
-        add_arm(part[i + 2], part[n->high], e->p, e->grows_true);
-        add_arm(part[i + 2], part[n->low], e->q, e->grows_false);
-    }
-}
-
 /* The greatest order whose part of the whole is above a threshold. */
 static int greatest_order(const double *part, double threshold)
 {
@@ -155,14 +138,11 @@ static int greatest_order(const double *part, double threshold)
     return greatest;
 }
 
-struct reach average_reach(const struct diagram *d, const struct extreme *extremes,
-                           double (*part)[LEGENDRE_ORDERS])
+struct reach average_reach(size_t n_roots, const uint32_t *roots, orders *part)
 {
-    node_orders(d, extremes, part);
     int coarse = 0, fine = 0;
-    for (size_t k = 0; k < d->n_roots; k++) {
-        int c = greatest_order(part[d->roots[k]], COARSE);
-        int f = greatest_order(part[d->roots[k]], FINE);
+    for (size_t k = 0; k < n_roots; k++) {
+        int c = greatest_order(part[roots[k]], COARSE), f = greatest_order(part[roots[k]], FINE);
         coarse = c > coarse ? c : coarse;
         fine = f > fine ? f : fine;
     }
@@ -177,6 +157,7 @@ static int pace_of(const struct legendre_rule *rule)
     return (rule->n > 4) + (rule->n > 8);
 }
 
+/* Rules rise, so what does with one part ends the search. */
 const struct legendre_rule *average_rule(const struct reach *r, const double x[PACES],
                                          double *parts)
 {
@@ -184,14 +165,17 @@ const struct legendre_rule *average_rule(const struct reach *r, const double x[P
     const struct legendre_rule *best = NULL;
     for (int i = 0; i < LEGENDRE_RULES; i++) {
         const struct legendre_rule *rule = &legendre_rules[i];
-        if (r->of[i] == 0)
+        double reach = r->of[i], length = x[pace_of(rule)];
+        if (reach == 0 || length * (double)rule->n >= fewest * reach)
             continue;
-        double n = fmax(1, ceil(x[pace_of(rule)] / r->of[i])), points = n * (double)rule->n;
+        double n = length <= reach ? 1 : ceil(length / reach), points = n * (double)rule->n;
         if (points < fewest) {
             best = rule;
             fewest = points;
             *parts = n;
         }
+        if (n == 1)
+            break;
     }
     return best ? best : &legendre_rules[LEGENDRE_RULES - 1];
 }

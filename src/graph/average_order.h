@@ -4,16 +4,20 @@
 #define GRAPH_AVERAGE_ORDER_H
 
 #include "graph/average.h"
+#include "graph/average_kernels.h"
 #include "graph/legendre.h"
 
-/* How likely a variable is at the most, and on which of its arms something grows from 0. */
-struct extreme {
-    double p, q;
-    bool grows_true, grows_false;
-};
 struct extreme average_still(double p, double q);
-struct extreme average_extreme(const struct course *c, const struct mixture *m,
-                               const struct windows *w);
+
+/* When a variable is most probable: right after the beginning, right after a reset, and just before
+ * the next. */
+struct extreme_times {
+    struct moments at;
+    bool fresh;
+};
+void average_times(const struct course *c, const struct windows *w, struct extreme_times *to);
+struct extreme average_extreme(const struct average_kernels *k, const struct extreme_times *t,
+                               const struct mixture *m);
 
 /* The exponents of a course, for rules of up to 4, 8 and 16 nodes: those of the fastest version
  * that counts for so many; and the slowest exponents. Of what is reset, and of what is not (0 where
@@ -31,9 +35,8 @@ struct reach {
 };
 
 /* From how many changing variables at a time make a root true, at the times when they are most
- * probable. `part` is scratch, as long as the diagram has nodes, and 2 more. */
-struct reach average_reach(const struct diagram *d, const struct extreme *extremes,
-                           double (*part)[LEGENDRE_ORDERS]);
+ * probable: `part` is that of each node and of the constants before them. */
+struct reach average_reach(size_t n_roots, const uint32_t *roots, orders *part);
 
 /* The rule and the number of equal parts with the fewest points for the sums x. */
 const struct legendre_rule *average_rule(const struct reach *r, const double x[PACES],

@@ -18,10 +18,12 @@ static void set_back(const struct averages *v, struct slopes *s)
     const struct diagram *d = v->diagram;
     memset(s->back, 0, (d->n_nodes + 2) * sizeof *s->back);
     memset(s->dp, 0, d->n_variables * sizeof *s->dp);
-    for (size_t k = 0; k < d->n_roots; k++)
-        for (size_t i = 0; i < v->points.n; i++)
-            s->back[d->roots[k]][i] +=
-                v->points.weight[i] * s->weight[v->points.window[i] * d->n_roots + k];
+    size_t i = 0;
+    for (const struct run *run = v->points.runs; i < v->points.n; run++)
+        for (; i < run->end; i++)
+            for (size_t k = 0; k < d->n_roots; k++)
+                s->back[d->roots[k]][i] +=
+                    v->points.weight[i] * s->weight[run->window * d->n_roots + k];
 }
 
 static void back_lanes(const struct averages *v, struct slopes *s)
@@ -52,13 +54,12 @@ static double dot(size_t n, const double *x, const double *y)
 
 static void add_course_slopes(const struct averages *v, const struct slopes *s, size_t i)
 {
-    const struct varying *one = &v->varying[i];
+    const struct moving *one = &v->varying[i];
     const double *x = one->versions.x[0], *dp = s->dp[one->variable];
     double *by = s->out->by[one->variable], slope[COURSE_ARGS];
-    struct moments at;
-    averages_moments(v, i, &at);
+    const struct moments *at = &v->timings[one->timing].at;
     for (size_t k = 0; k < v->points.n; k++) {
-        double change = course_change_slopes(x, at.left[k] == 0, at.since[k], at.age[k], slope);
+        double change = course_change_slopes(x, at->left[k] == 0, at->since[k], at->age[k], slope);
         by[COURSE_STANDING] += dp[k] * (1 - change);
         for (int a = COURSE_RATE; a < COURSE_ARGS; a++)
             by[a] += (1 - x[COURSE_STANDING]) * dp[k] * slope[a];

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Courses in lanes (course_lanes.h). Owns nothing.
+/* Courses in lanes (course_lanes.h), for one instruction set (base/isa.h). Owns nothing.
  *
  * What is lost of 1 by time x, 1 - exp(-y) with y = s x, is a series for y <= 1/4, and beyond it
  * is the series at y / 2^k, doubled k times: lost(2 y) = lost(y) (2 - lost(y)), left(2 y) =
@@ -9,18 +9,18 @@
  * vectors; there is no call in them. Lanes that are not in use are computed with the others. */
 #include "graph/course_lanes.h"
 
-#include <math.h>
-
 /* Beyond it nothing is left: exp(-700) is 1e-304. */
 static const double GONE = 700;
 
 /* A part that holds at a time: its probability, and that of the contrary. */
 struct part {
-    lanes is, not ;
+    _Alignas(LANES_ALIGNED) lanes is;
+    _Alignas(LANES_ALIGNED) lanes not ;
 };
 
 struct decay {
-    lanes left, lost;
+    _Alignas(LANES_ALIGNED) lanes left;
+    _Alignas(LANES_ALIGNED) lanes lost;
 };
 
 /* y - y^2 / 2! + y^3 / 3! - ...: within 1e-17 of it, relative, for y <= 1/64. */
@@ -90,9 +90,9 @@ static void scale(double s, double part, const double *restrict x, double *restr
 /* `latest` is the greatest x. */
 static void decay_lanes(double s, const double *x, double latest, struct decay *to)
 {
-    double most = fmin(s * latest, GONE), part = 1;
+    double most = s * latest < GONE ? s * latest : GONE, part = 1;
     int doublings = 0;
-    lanes y;
+    _Alignas(LANES_ALIGNED) lanes y;
     for (; most > 0.25; most /= 2, part /= 2)
         doublings++;
     scale(s, part, x, y);
@@ -184,7 +184,8 @@ static void add_version(double weight, double standing, const struct part *restr
     }
 }
 
-void course_lanes(const struct mixture *m, const struct moments *at, double *p, double *q)
+void ISA_NAME(course_lanes)(const struct mixture *m, const struct moments *at, double *restrict p,
+                            double *restrict q)
 {
     struct part change;
     for (int k = 0; k < LANES; k++)

@@ -13,15 +13,21 @@
 
 #include "math/draw_kernels.h"
 #include "math/lanes.h"
+#include "math/sobol.h"
 #include "math/stream.h"
 
 enum { MOST_POINTS = 1 << DRAW_MOST_LOG2 };
+
+static_assert((int)DRAW_MOST_LOG2 <= (int)SOBOL_DIRECTIONS, "a direction for each bit of a point");
 
 struct input {
     const struct quantile_table *table;
     double location, scale; /* x is location + scale times a value of the table */
     struct stream stream;
-    uint16_t direction[DRAW_MOST_LOG2]; /* of its net: DRAW_SCRAMBLED */
+    /* DRAW_SCRAMBLED: of its dimension; and which group it is in, with the key of that */
+    uint16_t direction[DRAW_MOST_LOG2];
+    unsigned group;
+    struct stream together;
 };
 
 struct draws {
@@ -98,40 +104,25 @@ static uint16_t *counting_row(struct arena *a, size_t n)
     return row;
 }
 
-/* What is left of v when the numbers of the basis are taken off that begin with a bit of it. */
-static uint16_t reduced(const uint16_t basis[DRAW_MOST_LOG2], uint16_t v)
+/* The dimension and the group of a place; of the directions the bits that tell strata apart. */
+static void give_place(struct input *in, const struct draw_plan *p, unsigned place,
+                       uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS])
 {
-    for (unsigned k = DRAW_MOST_LOG2; k-- > 0;)
-        if (v >> k & 1)
-            v ^= basis[k];
-    return v;
-}
-
-/* Random numbers of log2 bits, none of which is a sum without carry of others. */
-static void make_directions(struct stream s, unsigned log2, uint16_t *direction)
-{
-    uint16_t basis[DRAW_MOST_LOG2] = {0};
-    for (unsigned found = 0; found < log2;) {
-        uint16_t v = (uint16_t)(stream_next(&s) >> (64 - log2)), rest = reduced(basis, v);
-        if (rest == 0)
-            continue;
-        unsigned first = DRAW_MOST_LOG2 - 1;
-        while (!(rest >> first & 1))
-            first--;
-        basis[first] = rest;
-        direction[found++] = v;
-    }
+    in->group = place / SOBOL_DIMENSIONS;
+    in->together = stream_below(stream_of("", p->seed), in->group);
+    for (unsigned k = 0; k < p->log2_points; k++)
+        in->direction[k] =
+            (uint16_t)(direction[place % SOBOL_DIMENSIONS][k] >> (SOBOL_BITS - p->log2_points));
 }
 
 static struct input input_of(const struct draw_input *in, const struct draw_plan *p,
                              const struct quantile_table *table,
                              const struct quantile_standard *standard)
 {
-    struct stream own = stream_of(in->name, p->seed);
-    struct input made = {table, in->times * standard->location, in->times * standard->scale,
-                         stream_below(own, 0)};
-    make_directions(stream_below(own, 1), p->log2_points, made.direction);
-    return made;
+    return (struct input){.table = table,
+                          .location = in->times * standard->location,
+                          .scale = in->times * standard->scale,
+                          .stream = stream_of(in->name, p->seed)};
 }
 
 ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
@@ -140,6 +131,7 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
     struct draws *d = NEW(a, struct draws);
     struct quantile_edges *edges = NEW(a, struct quantile_edges);
     struct cache cache = cache_new(a, n);
+    uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS];
     *d = (struct draws){p->method,
                         p->log2_points,
                         kernels[p->isa],
@@ -147,10 +139,13 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
                         NEW_ARRAY(a, n, struct input),
                         counting_row(a, (size_t)1 << p->log2_points)};
     quantile_edges(edges);
+    if (!sobol_directions(direction))
+        arena_exhausted(a);
     for (size_t i = 0; i < n; i++) {
         struct quantile_standard standard = quantile_standard(&inputs[i].dist);
         const struct quantile_table *table = table_of(a, &cache, edges, &standard.dist);
         d->inputs[i] = input_of(&inputs[i], p, table, &standard);
+        give_place(&d->inputs[i], p, inputs[i].place, direction);
         if (!is_finite(d, &d->inputs[i]))
             return error_set(e, OHMEN_COMPUTE, "%s has no finite quantile", inputs[i].name);
     }
@@ -293,6 +288,22 @@ static void nested_order(const struct draws *d, struct stream s, const struct ro
     d->kernels->nest(d->log2, bits, r->spare, r->place);
 }
 
+/* The strata of an input's points before they are scrambled. Groups behind the first one take the
+ * points in another order in each set, which is nested, too, so that any 2^k of them that lie evenly
+ * still do. */
+static const uint16_t *cells_of(const struct draws *d, const struct input *in, uint64_t set,
+                                const struct rows *r)
+{
+    size_t n = (size_t)1 << d->log2;
+    d->kernels->net(d->log2, in->direction, r->cell);
+    if (in->group == 0)
+        return r->cell;
+    nested_order(d, stream_below(in->together, set), r);
+    for (size_t i = 0; i < n; i++)
+        r->which[i] = r->cell[r->place[i]];
+    return r->which;
+}
+
 void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, double *x)
 {
     const struct input *in = &d->inputs[i];
@@ -311,10 +322,9 @@ void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, dou
         any_order(n, order, r.place);
         place = r.place;
     } else if (d->method == DRAW_SCRAMBLED) {
+        cell = cells_of(d, in, set, &r);
         nested_order(d, order, &r);
         place = r.place;
-        d->kernels->net(d->log2, in->direction, r.cell);
-        cell = r.cell;
     }
     d->kernels->arrange(n, cell, place, r.ordered, in->location, in->scale, x);
 }

@@ -4,13 +4,12 @@
  * A sample comes in *sets*: each set has 2^log2_points values of every input, and sets are
  * independent of one another, so that the spread of what they give tells the error (at least 16
  * of them: what a single set gives has none). Within a set:
- *   DRAW_SCRAMBLED  a digital net in base 2 (H. Niederreiter, Random Number Generation and
- *                   Quasi-Monte Carlo Methods, 1992, chapter 4): each input has an invertible
- *                   matrix of bits, drawn by its name and the seed, which makes of the number of a
- *                   point the part of (0, 1) where its value stands; in each set these parts are
- *                   scrambled by a nested uniform random permutation of the input's own (A. B.
- *                   Owen, in Monte Carlo and Quasi-Monte Carlo Methods 1995, 299-317), and so are
- *                   all further bits
+ *   DRAW_SCRAMBLED  the points of a Sobol' sequence (direction numbers as GSL has them), each input
+ *                   in a dimension of its own, scrambled by a nested uniform random permutation of
+ *                   the input's own (A. B. Owen, in Monte Carlo and Quasi-Monte Carlo Methods 1995,
+ *                   299-317), and so are all further bits. Inputs are numbered by their places: 40
+ *                   places are a group; another group takes the points in another order, random in
+ *                   each set, so that places of different groups are paired as in a hypercube
  *   DRAW_HYPERCUBE  a latin hypercube (McKay, Beckman, Conover, Technometrics 21 (1979) 239): one
  *                   value in each of 2^log2_points equally likely parts, in random order
  *   DRAW_PLAIN      independent values
@@ -18,20 +17,15 @@
  * that its place inside the part is rounded to), at any spread, and those of different inputs at
  * one point are independent: so means over them have no bias.
  *
- * How well a net does depends on how two matrices happen to meet. Where inputs act together, most
- * pairs have an error far below that of a latin hypercube; but of one pair in about 2^log2_points
- * the halves are equal, or opposite, in every set, and what depends on both then has the error of
- * a few points. The spread of the sets shows that, and another seed ends it. Computed for a mean
- * over 7 inputs and sets of 1,024 points, over seeds: the error of a set is .0030 in the middle of
- * all seeds, .010 at worst in 9 of 10, .027 in the worst of 100; with hypercubes it is .0068, with
- * independent values .021. Over names and seeds no choice by names alone does better on
- * the average: the halves of a point's parts can be cut in 2^log2_points - 1 ways, and inputs that
- * do not know of each other may take the same one. Dimensions of a Sobol' sequence in place of
- * matrices would be the same for one pair of inputs in as many as there are dimensions.
+ * The first places are the best ones, about eight of them far better than those behind, so they are
+ * for the inputs that matter most. Computed for a product of 7 lognormals with sigma .4 and sets of
+ * 1,024 points: the error of a set is .0089 with the first 7 places, .026 with 7 of the 40 at
+ * random, .028 with hypercubes, .045 with independent values. Two inputs of one place and different
+ * names would have equal or opposite halves in every set: not to be had where they meet in a figure.
  *
  * Invariant: the values of an input in a set are decided by the seed, its name, its distribution,
- * the method, the number of points and the number of the set, and by nothing else: not by other
- * inputs, the order in which anything is asked for, threads, or the instruction set. */
+ * its place, the method, the number of points and the number of the set, and by nothing else: not by
+ * other inputs, the order in which anything is asked for, threads, or the instruction set. */
 #ifndef MATH_DRAW_H
 #define MATH_DRAW_H
 
@@ -57,7 +51,7 @@ struct draw_input {
     const char *name;
     struct dist dist;
     double times;
-    unsigned place; /* DRAW_SCRAMBLED: see above */
+    unsigned place; /* DRAW_SCRAMBLED: from 0 on, one for each name */
 };
 
 struct draws;

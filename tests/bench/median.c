@@ -5,11 +5,21 @@
 #include <stdlib.h>
 #include <time.h>
 
-double bench_now(void)
+static double milliseconds(clockid_t clock)
 {
     struct timespec t;
-    clock_gettime(CLOCK_MONOTONIC, &t);
+    clock_gettime(clock, &t);
     return (double)t.tv_sec * 1e3 + (double)t.tv_nsec / 1e6;
+}
+
+double bench_now(void)
+{
+    return milliseconds(CLOCK_MONOTONIC);
+}
+
+double bench_worked(void)
+{
+    return milliseconds(CLOCK_THREAD_CPUTIME_ID);
 }
 
 static int by_size(const void *p, const void *q)

@@ -8,6 +8,8 @@
 
 /* Milliseconds of a clock that never goes back. */
 double bench_now(void);
+/* Milliseconds that this thread has worked: others of the machine do not count. */
+double bench_worked(void);
 
 /* The median of RUNS times; sorts them. */
 double bench_median(double times[RUNS]);

@@ -20,5 +20,6 @@ trap 'exit 130' INT TERM
 "$build/tests/bench/start" "$ohmen" "$build/tests/bench/empty" "$work/skerry.ohmen"
 "$build/tests/bench/load" 10000
 "$build/tests/bench/diagrams" 10000
+"$build/tests/bench/averages" "$work/skerry.ohmen"
 "$build/tests/bench/protection" 10000 "$work"
 "$build/tests/bench/lanes" 1000000

@@ -1,10 +1,12 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Averages of diagrams over time against adaptive quadrature in long double that knows the instants
- * of reset, against closed forms and values worked out apart; their slopes against differences,
+ * of reset, against closed forms and values worked out apart; by every instruction set, and after
+ * other values, with the same bytes and no memory asked for; their slopes against differences,
  * effects against variables that are set to true and to false. */
 #include "eval/eval.h"
 #include "graph/average.h"
 #include "graph/legendre.h"
+#include "failmem.h"
 #include "random.h"
 
 #include <check.h>
@@ -480,6 +482,205 @@ START_TEST(too_many_resets_have_no_value)
 }
 END_TEST
 
+/* ---- again and again ---- */
+
+enum { VERSIONS = 3 };
+
+/* A world and versions of some of its courses. */
+struct mixed {
+    struct world w;
+    double weight[MOST][VERSIONS], x[MOST][VERSIONS][COURSE_ARGS];
+    struct mixture mixture[MOST];
+    bool changed[MOST];
+};
+
+static struct averaged mixed_averaged(const struct mixed *m, enum isa isa)
+{
+    struct averaged what = averaged(&m->w);
+    what.mixture = m->mixture;
+    what.isa = isa;
+    return what;
+}
+
+/* Rates from hardly ever to all the time: other rules, numbers of points, exponents that fade. */
+static void redraw_course(struct random *r, struct mixed *m, size_t i)
+{
+    double *x = m->w.x[i];
+    x[COURSE_RATE] = random_log_uniform(r, 1e-9, 3);
+    x[COURSE_ENDING] = maybe(r, 1e-3, 2000);
+    x[COURSE_STANDING] = maybe(r, 1e-7, 1e-2);
+    for (int k = 0; k < VERSIONS; k++) {
+        memcpy(m->x[i][k], x, sizeof m->x[i][k]);
+        m->x[i][k][COURSE_RATE] *= random_log_uniform(r, 0.1, 10);
+        m->weight[i][k] = k < 2 ? 0.25 : 0.5;
+    }
+}
+
+/* Other values of some variables, of all in the end. */
+static void redraw(struct random *r, struct mixed *m)
+{
+    bool all = random_index(r, 4) == 0;
+    for (size_t i = 0; i < m->w.n; i++) {
+        m->changed[i] = all || random_index(r, 3) == 0;
+        if (m->changed[i] && m->w.at[i])
+            redraw_course(r, m, i);
+        else if (m->changed[i]) {
+            m->w.p[i] = random_log_uniform(r, 1e-9, 0.5);
+            m->w.q[i] = 1 - m->w.p[i];
+        }
+    }
+}
+
+static void draw_mixed(struct random *r, struct mixed *m)
+{
+    memset(m, 0, sizeof *m);
+    draw(r, &m->w);
+    for (size_t i = 0; i < m->w.n; i++) {
+        if (!m->w.at[i])
+            continue;
+        redraw_course(r, m, i);
+        if (random_index(r, 3) == 0)
+            m->mixture[i] =
+                (struct mixture){VERSIONS, m->weight[i], (const double(*)[COURSE_ARGS])m->x[i]};
+    }
+}
+
+static void same_bytes(const struct mixed *m, const double *got, const double *want, int n)
+{
+    size_t size = m->w.n_windows * ROOTS * sizeof *got;
+    ck_assert_msg(memcmp(got, want, size) == 0, "world %d", n);
+}
+
+START_TEST(instruction_sets_give_the_same_bytes)
+{
+    struct random r = random_seed(58);
+    struct mixed m;
+    ck_assert(isa_runs(ISA_plain));
+    for (int n = 0; n < 300; n++) {
+        teardown(), setup();
+        double want[4 * ROOTS], got[4 * ROOTS];
+        draw_mixed(&r, &m);
+        struct averaged what = mixed_averaged(&m, ISA_plain);
+        average_values(arena, &what, want);
+        for (int i = 0; i < ISA_COUNT; i++)
+            if (isa_runs((enum isa)i)) {
+                what.isa = (enum isa)i;
+                average_values(arena, &what, got);
+                same_bytes(&m, got, want, n);
+            }
+    }
+}
+END_TEST
+
+/* After others, some of the values new, by whatever instruction set: as from the beginning. */
+START_TEST(what_was_asked_before_does_not_matter)
+{
+    struct random r = random_seed(59);
+    struct mixed m;
+    for (int n = 0; n < 60; n++) {
+        teardown(), setup();
+        double want[4 * ROOTS], got[4 * ROOTS];
+        draw_mixed(&r, &m);
+        struct averaged what = mixed_averaged(&m, ISA_plain);
+        struct averages *v = averages_new(arena, &what);
+        for (int k = 0; k < 20; k++, redraw(&r, &m)) {
+            what.isa = random_index(&r, 2) ? isa_best() : ISA_plain;
+            averages_take(v, &what, k ? m.changed : NULL, got);
+            average_values(arena, &what, want);
+            same_bytes(&m, got, want, n);
+        }
+    }
+}
+END_TEST
+
+/* What has no value leaves nothing behind. */
+START_TEST(a_value_follows_where_there_was_none)
+{
+    struct random r = random_seed(60);
+    struct mixed m;
+    double want[4 * ROOTS], got[4 * ROOTS];
+    do
+        draw_mixed(&r, &m);
+    while (!m.w.at[0] || m.mixture[0].n);
+    struct averaged what = mixed_averaged(&m, isa_best());
+    struct averages *v = averages_new(arena, &what);
+    average_values(arena, &what, want);
+    double rate = m.w.x[0][COURSE_RATE];
+    for (int k = 0; k < 3; k++) {
+        m.w.x[0][COURSE_RATE] = k % 2 ? rate : INFINITY;
+        m.changed[0] = true;
+        averages_take(v, &what, k ? m.changed : NULL, got);
+        ck_assert(k % 2 ? !isnan(got[0]) : isnan(got[0]));
+        if (k % 2)
+            same_bytes(&m, got, want, k);
+    }
+}
+END_TEST
+
+/* A block of the least size, again and again, until nothing is left of an arena whose seam refuses
+ * more. */
+static void exhaust(struct arena *a, struct failmem *f)
+{
+    jmp_buf full;
+    f->fail_at = f->allocations;
+    if (setjmp(full) == 0) {
+        arena_guard(a, &full);
+        for (;;)
+            arena_alloc(a, 1);
+    }
+    f->failed = 0;
+}
+
+/* Many windows, so that some worlds keep all, others a part. */
+static void lengthen(struct mixed *m, struct window *windows, size_t n)
+{
+    for (size_t k = 0; k < n; k++)
+        windows[k] = (struct window){(double)k, (double)k + 1};
+    m->w.n_windows = n;
+}
+
+static void take_often(struct random *r, struct averages *v, struct mixed *m, struct averaged *what,
+                       double *results)
+{
+    for (int k = 0; k < 100; k++) {
+        redraw(r, m);
+        averages_take(v, what, m->changed, results);
+    }
+}
+
+START_TEST(nothing_is_allocated_after_the_first_time)
+{
+    enum { YEARS = 120 };
+    static struct window windows[YEARS];
+    static double results[YEARS * ROOTS];
+    static struct mixed m;
+    struct random r = random_seed(61);
+    for (int n = 0; n < 20; n++) {
+        teardown(), setup();
+        draw_mixed(&r, &m);
+        lengthen(&m, windows, n % 2 ? 3 : YEARS);
+        struct failmem f;
+        failmem_init(&f, FAILMEM_NEVER);
+        struct arena *a = arena_new(&f.mem);
+        struct averaged what = mixed_averaged(&m, isa_best());
+        what.windows.at = windows;
+        struct averages *v = averages_new(a, &what);
+        averages_take(v, &what, NULL, results);
+        /* Of an arena's blocks less than half may be empty. */
+        ck_assert_uint_le(f.bytes / 2, AVERAGES_KEEP + 420 * m.w.d->n_nodes + 4096 * (m.w.n + 1));
+        exhaust(a, &f);
+        jmp_buf asked;
+        if (setjmp(asked))
+            ck_abort_msg("asked for memory");
+        arena_guard(a, &asked);
+        take_often(&r, v, &m, &what, results);
+        ck_assert_uint_eq(f.failed, 0);
+        arena_free(a);
+        failmem_check(&f);
+    }
+}
+END_TEST
+
 /* ---- slopes ---- */
 
 static double weighted(const struct world *w, const double *weight)
@@ -694,6 +895,10 @@ static Suite *average_suite(void)
     tcase_add_test(t, cuts_may_coincide);
     tcase_add_test(t, what_does_not_change_is_exact);
     tcase_add_test(t, too_many_resets_have_no_value);
+    tcase_add_test(t, instruction_sets_give_the_same_bytes);
+    tcase_add_test(t, what_was_asked_before_does_not_matter);
+    tcase_add_test(t, a_value_follows_where_there_was_none);
+    tcase_add_test(t, nothing_is_allocated_after_the_first_time);
     tcase_add_test(t, slopes_match_differences);
     tcase_add_test(t, gains_and_shares_are_differences);
     tcase_add_test(t, nodes_equal_their_expansion);
