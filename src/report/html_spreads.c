@@ -60,9 +60,11 @@ void html_spreads(struct html *h, const struct block *b, const char *id)
     const char **strips = NEW_ARRAY(h->page.arena, s->n, const char *);
     for (size_t i = 0; i < s->n; i++)
         strips[i] = strip_of(h, &g, &s->at[i]);
+    html_raw(h, "<figure>\n");
     html_table_drawn(h, spreads_table(&g), id, b->title, strips);
     if (s->n)
         put_key(h);
     if (spreads_have_errors(s))
         html_remark(h, SPREADS_ERROR_WORDS, NULL);
+    html_raw(h, "</figure>\n");
 }

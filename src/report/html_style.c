@@ -159,7 +159,7 @@ const char *const html_style[] = {
     "svg .solid { fill: var(--soft); stroke: var(--ink); stroke-width: 1.2; }\n"
     "svg .today { stroke-width: 2; }\n"
     "svg .turn { font-weight: 700; fill: var(--alarm); }\n"
-    "svg .fill { fill: var(--soft); stroke: none; }\n"
+    "svg .fill { fill: var(--soft); stroke: none; shape-rendering: crispEdges; }\n"
     "svg .c0 { fill-opacity: .2; } svg .c1 { fill-opacity: .5; }\n"
     "svg .c2 { fill-opacity: .08; } svg .c3 { fill-opacity: .35; }\n"
     "svg .c4 { fill-opacity: .65; } svg .c5 { fill-opacity: .14; }\n"
@@ -168,7 +168,7 @@ const char *const html_style[] = {
     "svg .letter { font-weight: 700; paint-order: stroke; stroke: var(--paper); stroke-width:\n"
     "    3px; stroke-linejoin: round; }\n"
     ".sample .fill, .sample .bare { stroke: var(--ink); stroke-width: .8; }\n"
-    ".drawn svg { display: block; width: 15rem; height: 1.1rem; overflow: visible; }\n"
+    ".drawn svg { display: block; width: 11rem; height: 1.1rem; overflow: visible; }\n"
     ".drawn { vertical-align: middle; }\n"
     "svg .median { stroke-width: 2; }\n",
     /* wide and narrow pages, paper */

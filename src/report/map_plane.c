@@ -5,6 +5,8 @@
 #include <assert.h>
 #include <math.h>
 
+#include "report/number.h"
+
 static void open_way(struct map_way *w, const struct curve_axis *axis, const double *values,
                      size_t n, struct arena *a)
 {
@@ -112,6 +114,24 @@ static bool has_worth(const struct map *m)
     return *m->worth.head || *m->worth.unit;
 }
 
+/* One for all choices, so that their worths can be compared. */
+static int worth_shift(const struct map *m)
+{
+    double least = INFINITY, greatest = -INFINITY;
+    for (size_t i = 0; i < m->cells.n; i++) {
+        least = fmin(least, m->cells.at[i].worth);
+        greatest = fmax(greatest, m->cells.at[i].worth);
+    }
+    return number_shift(m->worth.style, m->worth.unit, least, greatest);
+}
+
+static void add_worth(const struct map *m, struct report *r, struct row *row, double worth)
+{
+    struct cell *c = row_number(r, row, worth, NULL);
+    c->style = m->worth.style;
+    c->shift = worth_shift(m);
+}
+
 static void add_choice(const struct map_plane *g, struct report *r, struct block *b, size_t i)
 {
     const struct map *m = g->map;
@@ -122,8 +142,23 @@ static void add_choice(const struct map_plane *g, struct report *r, struct block
     row_count(r, row, s.cells);
     if (!has_worth(m) || s.cells == 0)
         return;
-    row_number(r, row, s.least, NULL);
-    row_number(r, row, s.greatest, NULL);
+    add_worth(m, r, row, s.least);
+    add_worth(m, r, row, s.greatest);
+}
+
+static void add_worth_column(const struct map *m, struct report *r, struct block *b,
+                             const char *what, unsigned keep)
+{
+    int shift = worth_shift(m);
+    const char *head = m->worth.head, *between = *head ? ": " : "";
+    const char *prefix = shift > 0 ? money_prefix(shift) : "";
+    const char *unit = m->worth.style == STYLE_PERCENT
+                           ? "%"
+                           : arena_printf(r->arena, "%s%s", prefix, m->worth.unit);
+    head = arena_printf(r->arena, "%s%s%s", head, between, what);
+    struct column *c = block_column(r, b, what, head, unit, STYLE_PLAIN);
+    c->own = true;
+    c->keep = keep;
 }
 
 const struct block *map_key_choices(const struct map_plane *g)
@@ -136,14 +171,8 @@ const struct block *map_key_choices(const struct map_plane *g)
     block_column(&r, b, "choice", "Choice", "", STYLE_PLAIN);
     block_column(&r, b, "cells", "Cells", "", STYLE_PLAIN)->keep = 1;
     if (has_worth(m)) {
-        const char *head = m->worth.head;
-        const char *between = *head ? ": " : "";
-        block_column(&r, b, "least", arena_printf(r.arena, "%s%sleast", head, between),
-                     m->worth.unit, m->worth.style)
-            ->keep = 2;
-        block_column(&r, b, "greatest", arena_printf(r.arena, "%s%sgreatest", head, between),
-                     m->worth.unit, m->worth.style)
-            ->keep = 3;
+        add_worth_column(m, &r, b, "least", 2);
+        add_worth_column(m, &r, b, "greatest", 3);
     }
     for (size_t i = 0; i < m->choices.n; i++)
         add_choice(g, &r, b, i);

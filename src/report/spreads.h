@@ -12,7 +12,10 @@
 #define SPREADS_RANGE_WORDS "from the value at 5 % to that at 95 %"
 #define SPREADS_MEDIAN_WORDS "median"
 #define SPREADS_MEAN_WORDS "mean"
-#define SPREADS_ERROR_WORDS "Error: the standard error of the number, for it was sampled."
+#define SPREADS_ERROR_WORDS "Error: the standard error of a number that was sampled."
+
+/* What a narrow page gives up first. */
+enum { SPREADS_ERROR_KEEP = 1, SPREADS_MEAN_ERROR_KEEP, SPREADS_DRAWN_KEEP };
 
 struct spreads_plane {
     const struct page *page;

@@ -13,8 +13,6 @@ static const double FAR_APART = 30;
 /* Up to this many times the least value, a scale from 0 would hide what differs. */
 static const double CLOSE = 1.5;
 
-enum { ERROR_KEEP = 1, DRAWN_KEEP = 2, MEAN_ERROR_KEEP = 3 };
-
 struct range {
     double least, greatest;
 };
@@ -55,15 +53,7 @@ static bool is_far(struct range r)
 
 static int shift_of(const struct spread *s, struct range r)
 {
-    if (s->style == STYLE_PERCENT)
-        return -2;
-    if (s->style != STYLE_MONEY || !*s->unit)
-        return 0;
-    double largest = fmax(fabs(r.least), fabs(r.greatest));
-    double smallest = fmin(fabs(r.least), fabs(r.greatest));
-    if (largest == 0)
-        return 0;
-    return money_shift(number_exponent(largest), number_exponent(smallest ? smallest : largest));
+    return number_shift(s->style, s->unit, r.least, r.greatest);
 }
 
 /* From 0, or to it, unless the numbers are close together and far from it. */
@@ -180,8 +170,8 @@ static const char *scale_words(const struct spreads_plane *g)
 /* --- the table --- */
 
 static const char *const part_heads[SPREAD_PARTS] = {"Mean", "5 %", "Median", "95 %"};
-static const char *const error_heads[SPREAD_PARTS] = {"Error of mean", "Error of 5 %",
-                                                      "Error of median", "Error of 95 %"};
+static const char *const error_heads[SPREAD_PARTS] = {"Error (mean)", "Error (5 %)",
+                                                      "Error (median)", "Error (95 %)"};
 
 static bool has_error(const struct spreads *s, int part)
 {
@@ -215,12 +205,13 @@ static void add_columns(const struct spreads_plane *g, struct report *r, struct 
     for (int k = 0; k < SPREAD_PARTS; k++) {
         add_column(r, b, part_heads[k], unit, 0);
         if (has_error(s, k))
-            add_column(r, b, error_heads[k], unit, k == SPREAD_MEAN ? MEAN_ERROR_KEEP : ERROR_KEEP);
+            add_column(r, b, error_heads[k], unit,
+                       k == SPREAD_MEAN ? SPREADS_MEAN_ERROR_KEEP : SPREADS_ERROR_KEEP);
     }
     if (!g->common)
         block_column(r, b, "unit", "Unit", "", STYLE_PLAIN);
     struct column *drawn = block_column(r, b, "range", scale_words(g), "", STYLE_PLAIN);
-    drawn->keep = DRAWN_KEEP;
+    drawn->keep = SPREADS_DRAWN_KEEP;
     drawn->drawn = true;
 }
 

@@ -59,13 +59,12 @@ static struct block *drawn_table(const struct spreads_plane *g, int columns)
 static const struct block *widest_table(const struct spreads_plane *g, bool *drawn)
 {
     static const int widths[] = {60, 48, 36, 30, 24, 20, 16};
-    enum { DRAWN_KEEP = 2 };
     *drawn = true;
     for (int easy = 1; easy >= 0; easy--) {
         for (size_t i = 0; i < sizeof widths / sizeof *widths; i++) {
             struct block *b = drawn_table(g, widths[i]);
             if (widths[i] * 3 <= (int)g->page->width &&
-                table_has_room(g->page, b, DRAWN_KEEP, easy))
+                table_has_room(g->page, b, SPREADS_DRAWN_KEEP, easy))
                 return b;
         }
     }

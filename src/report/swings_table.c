@@ -91,8 +91,8 @@ struct block *swings_table(const struct swings_plane *g, bool joined, bool with_
     block_column(&r, b, "input", joined ? "Input: its range" : "Input", "", STYLE_PLAIN);
     if (!joined)
         block_column(&r, b, "words", "Its range", "", STYLE_PLAIN)->keep = 1;
-    block_column(&r, b, "low", "At low end", unit, STYLE_PLAIN)->own = true;
-    block_column(&r, b, "high", "At high end", unit, STYLE_PLAIN)->own = true;
+    block_column(&r, b, "low", "At low", unit, STYLE_PLAIN)->own = true;
+    block_column(&r, b, "high", "At high", unit, STYLE_PLAIN)->own = true;
     if (with_today)
         add_today(g, &r, b);
     for (size_t i = 0; i < g->swings->rows.n; i++)

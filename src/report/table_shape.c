@@ -137,6 +137,7 @@ static void show_column(const struct page *p, struct table_shape *t, size_t j)
     to->keep = c->keep;
     to->data = c->data;
     to->drawn = c->drawn;
+    to->own = c->own;
     to->dropped = c->data;
     for (size_t i = 0; i < t->n_rows; i++)
         t->cells[i * t->n_columns + j] =
@@ -168,7 +169,7 @@ static void measure_column(const struct page *p, struct table_shape *t, size_t j
     if (c->drawn)
         c->least = larger(c->least, whole);
     if (c->number)
-        head = smaller(head, EASY_HEAD);
+        head = smaller(head, c->own ? word : EASY_HEAD);
     c->natural = larger(larger(c->least, word), larger(whole, head));
     if (!c->number && longest == LONGEST_WORD)
         c->least = larger(c->least, smaller(c->natural, LEAST_TEXT));
