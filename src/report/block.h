@@ -157,7 +157,7 @@ struct curve {
 struct swing {
     const char *label;    /* names the input */
     const char *words;    /* its two ends: "2e-3 .. 9e-3 per a" */
-    double low, high;     /* the result where the input is at its low, its high end; as of a point */
+    double low, high;     /* the result with the input at its low and high end; as of a point */
     const char *low_figure, *high_figure;
     bool low_turns, high_turns; /* what `turns` says holds at that end */
 };
@@ -351,9 +351,10 @@ void report_write_json(struct text *out, const struct report *r);
 void report_write_csv(struct text *out, const struct report *r);
 
 /* One page of HTML that needs nothing else and runs nothing: the blocks in their order, with
- * contents, and grids, curves, swings and maps as pictures (SVG) with their numbers in tables below. Every
- * number is rounded as in the text, and carries the name of its figure in `data-figure`. For
- * screens from 320 pixels and for paper. */
+ * contents, and grids, curves, swings and maps as pictures (SVG) with their numbers in tables
+ * below; of spreads a strip in each row of their table. Every number is rounded as in the text,
+ * and carries the name of its figure in `data-figure`. For screens from 320 pixels and for
+ * paper. */
 void report_write_html(struct text *out, const struct report *r);
 
 /* The parts that other writers and tests use: three significant digits of the exact

@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The tables of a report, the marks of its grids and the points of its curves as
- * comma-separated values (RFC 4180: CR LF, quotes where needed). Control and invisible
- * characters are shown, not sent; texts that a spreadsheet would take for a formula are guarded.
- * Owns nothing. */
+/* The tables of a report and the numbers of its pictures (marks of grids, points of curves, rows of
+ * swings and spreads, cells of maps) as comma-separated values (RFC 4180: CR LF, quotes where
+ * needed). Control and invisible characters are shown, not sent; texts that a spreadsheet would
+ * take for a formula are guarded. Owns nothing. */
 #include <assert.h>
 #include <math.h>
 #include <string.h>
@@ -233,8 +233,7 @@ static void write_spread(struct csv_out *w, const struct spread *s)
 
 static void write_spreads(struct csv_out *w, const struct spreads *s)
 {
-    text_add(w->out,
-             "label,unit,mean,p5,p50,p95,mean-error,p5-error,p50-error,p95-error\r\n");
+    text_add(w->out, "label,unit,mean,p5,p50,p95,mean-error,p5-error,p50-error,p95-error\r\n");
     for (size_t i = 0; i < s->n; i++)
         write_spread(w, &s->at[i]);
 }

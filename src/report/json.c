@@ -425,8 +425,8 @@ static void put_spreads(struct json *j, const struct spreads *s)
 
 static void put_block(struct json *j, const struct block *b)
 {
-    static const char *const types[] = {"heading",    "note",   "pairs", "table",  "grid", "curve",
-                                        "signatures", "swings", "map",   "spreads"};
+    static const char *const types[] = {"heading", "note",       "pairs",  "table", "grid",
+                                        "curve",   "signatures", "swings", "map",   "spreads"};
     text_byte(j->out, '{');
     put_member(j, "key", b->key, true);
     put_member(j, "type", types[b->type], false);

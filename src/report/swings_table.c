@@ -37,6 +37,7 @@ const char *swings_today(const struct swings_plane *g)
     char number[32];
     number_scaled(number, g->swings->today, g->axis.style, g->scale.shift);
     const char *unit = page_clean(g->page, unit_of(g));
+    unit += text_starts(unit, "1/") ? 1 : 0; /* "/a" reads better behind a number */
     return arena_printf(g->page->arena, "Today: %s%s%s", number, *unit ? " " : "", unit);
 }
 

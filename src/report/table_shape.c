@@ -16,7 +16,8 @@ enum {
     LONGEST_WORD = 24, /* words up to this are whole while others can go */
     BROKEN_WORD = 8,   /* the last resort */
     EASY_TEXT = 28,    /* a text column this wide reads well beside return periods */
-    EASY_HEAD = 14     /* a head may widen a column of numbers so far */
+    EASY_HEAD = 14,    /* a head may widen a column of numbers so far */
+    EASY_OWN_HEAD = 8  /* the same where cells have styles of their own: beside a picture */
 };
 
 static size_t larger(size_t a, size_t b)
@@ -169,7 +170,7 @@ static void measure_column(const struct page *p, struct table_shape *t, size_t j
     if (c->drawn)
         c->least = larger(c->least, whole);
     if (c->number)
-        head = smaller(head, c->own ? word : EASY_HEAD);
+        head = smaller(head, c->own ? EASY_OWN_HEAD : EASY_HEAD);
     c->natural = larger(larger(c->least, word), larger(whole, head));
     if (!c->number && longest == LONGEST_WORD)
         c->least = larger(c->least, smaller(c->natural, LEAST_TEXT));

@@ -26,7 +26,7 @@ struct table_column {
     bool to_right; /* head and text to the right */
     bool dropped;
     bool data;           /* never on a page */
-    bool own;            /* numbers of several styles: heads do not widen it */
+    bool own;            /* numbers with styles of their own: heads hardly widen it */
     bool drawn;          /* a picture of characters, as wide as it is */
     unsigned keep;
     size_t left, right; /* columns up to the point; behind it, with mark */

@@ -40,6 +40,8 @@ static struct picture draw(unsigned width)
     const char *s = text_of(arena, &report, width, true, false);
     check_page(arena, s, width, true);
     p.lines = lines_of(arena, s);
+    if (*p.lines.at[0] == '(') /* "(log axis)" above a picture without a head */
+        p.lines = (struct page_lines){p.lines.at + 1, p.lines.n - 1};
     for (size_t i = 0; i < p.lines.n && !p.columns; i++) {
         const char *line = p.lines.at[i], *axis = line + strspn(line, " ");
         size_t n = strlen(axis);
@@ -161,7 +163,7 @@ START_TEST(cells_are_right)
 {
     struct random r = random_seed(9300 + (uint64_t)_i);
     fill(&r, random_index(&r, 40) + 3, random_index(&r, 40) + 3);
-    for (unsigned width = 60; width <= 200; width += 14) {
+    for (unsigned width = 60; width <= 200; width += 28) {
         struct picture p = draw(width);
         ck_assert_int_ge(p.rows, 8);
         ck_assert_int_le(p.rows, 20);
@@ -237,7 +239,7 @@ Suite *suite_report_map(void)
     Suite *s = suite_create("report map");
     TCase *t = tcase_create("map");
     tcase_add_checked_fixture(t, setup, teardown);
-    tcase_add_loop_test(t, cells_are_right, 0, 40);
+    tcase_add_loop_test(t, cells_are_right, 0, 24);
     tcase_add_test(t, the_key_names_all_choices);
     tcase_add_test(t, one_cell);
     tcase_add_test(t, as_data);
