@@ -185,6 +185,26 @@ START_TEST(the_key_names_all_choices)
 }
 END_TEST
 
+/* Colour is never alone: each choice that has a cell has its letter in the picture. */
+START_TEST(every_area_has_its_letter)
+{
+    struct random r = random_seed(9450 + (uint64_t)_i);
+    fill(&r, random_index(&r, 20) + 3, random_index(&r, 20) + 3);
+    struct text t;
+    text_init(&t, arena);
+    report_write_html(&t, &report);
+    const char *from = strstr(text_str(&t), "<svg viewBox"), *end = strstr(from, "</svg>");
+    const char *picture = arena_strn(arena, from, (size_t)(end - from));
+    for (size_t i = 0; i < block->map->cells.n; i++) {
+        size_t choice = block->map->cells.at[i].choice;
+        const char *sign = choice ? arena_printf(arena, "%c", letter_of(choice)) : "·";
+        const char *letter = arena_printf(arena, "\"middle\">%s</text>", sign);
+        ck_assert_msg(strstr(picture, letter) != NULL, "no %s", sign);
+    }
+    ck_assert(strstr(picture, ">today</text>") != NULL);
+}
+END_TEST
+
 START_TEST(one_cell)
 {
     map_add_choice(&report, block, "only", false);
@@ -241,6 +261,7 @@ Suite *suite_report_map(void)
     tcase_add_checked_fixture(t, setup, teardown);
     tcase_add_loop_test(t, cells_are_right, 0, 24);
     tcase_add_test(t, the_key_names_all_choices);
+    tcase_add_loop_test(t, every_area_has_its_letter, 0, 20);
     tcase_add_test(t, one_cell);
     tcase_add_test(t, as_data);
     suite_add_tcase(s, t);

@@ -4,6 +4,7 @@
 #include "report_test.h"
 
 #include <math.h>
+#include <stdlib.h>
 #include <string.h>
 
 #include "json_check.h"
@@ -191,6 +192,39 @@ START_TEST(all_numbers_are_told)
 }
 END_TEST
 
+/* --- HTML --- */
+
+static double number_behind(const char **at, const char *before)
+{
+    const char *found = strstr(*at, before);
+    ck_assert_msg(found != NULL, "no %s", before);
+    *at = found + strlen(before);
+    return strtod(*at, NULL);
+}
+
+/* On a scale from 0 places are in proportion to values, to a tenth of the strip's unit. */
+START_TEST(strips_of_the_page_are_right)
+{
+    add("first", "a", 1, 3, 5, 10);
+    add("second", "a", 2, 4, 4, 7.5);
+    struct text t;
+    text_init(&t, arena);
+    report_write_html(&t, &report);
+    const char *at = strstr(text_str(&t), "<tbody>");
+    for (size_t i = 0; i < 2; i++) {
+        const struct spread *s = &block->spreads->at[i];
+        double zero = number_behind(&at, "class=\"faint\" x1=\"");
+        double ten = number_behind(&at, "x2=\"");
+        double low = number_behind(&at, "class=\"rule\" x1=\""), high = number_behind(&at, "x2=\"");
+        double median = number_behind(&at, "class=\"median\" x1=\"");
+        double places[] = {number_behind(&at, "cx=\""), low, median, high};
+        for (int k = 0; k < SPREAD_PARTS; k++)
+            ck_assert_double_eq_tol(places[k], zero + (ten - zero) * s->parts[k].value / 10, 0.051);
+    }
+    ck_assert(strstr(text_str(&t), "aria-label=\"mean 5, 5 % 1, median 3, 95 % 10 a\"") != NULL);
+}
+END_TEST
+
 /* --- by hand --- */
 
 START_TEST(a_number_that_is_known)
@@ -234,6 +268,7 @@ Suite *suite_report_spreads(void)
     tcase_add_loop_test(t, all_numbers_are_told, 0, 10);
     tcase_add_test(t, a_number_that_is_known);
     tcase_add_test(t, numbers_on_both_sides_of_0);
+    tcase_add_test(t, strips_of_the_page_are_right);
     tcase_add_test(t, as_csv);
     suite_add_tcase(s, t);
     return s;

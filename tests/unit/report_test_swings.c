@@ -268,6 +268,72 @@ START_TEST(as_data)
 }
 END_TEST
 
+/* --- HTML --- */
+
+static const char *html_of_report(void)
+{
+    struct text t;
+    text_init(&t, arena);
+    report_write_html(&t, &report);
+    return text_str(&t);
+}
+
+/* The number behind `before` in the next element that begins with `element`. */
+static double number_in(const char **at, const char *element, const char *before)
+{
+    const char *found = strstr(*at, element);
+    ck_assert_msg(found != NULL, "no %s", element);
+    *at = found + strlen(element);
+    found = strstr(found, before);
+    return strtod(found + strlen(before), NULL);
+}
+
+/* The end of the next bar of the class: its side that is not at the line of today. */
+static double end_of_bar(const char **at, const char *class, double today)
+{
+    const char *element = arena_printf(arena, "<path class=\"%s\" ", class);
+    const char *from_here = *at;
+    double left = number_in(at, element, "d=\"M");
+    double right = number_in(&from_here, element, "H");
+    ck_assert_msg(fabs(left - today) < 0.06 || fabs(right - today) < 0.06, "%g %g away from %g",
+                  left, right, today);
+    return fabs(left - today) < 0.06 ? right : left;
+}
+
+/* Bars are as long as the changes, in the same proportion, to a tenth of the picture's unit. */
+START_TEST(bars_of_the_picture_are_right)
+{
+    struct random r = random_seed(9200 + (uint64_t)_i);
+    begin(some_result(&r));
+    size_t n = random_index(&r, 9) + 1;
+    double today = block->swings->today, widest = 0;
+    for (size_t i = 0; i < n; i++) {
+        struct swing *s = add("row", some_result(&r), some_result(&r));
+        widest = fmax(widest, fmax(fabs(s->low - today), fabs(s->high - today)));
+    }
+    const char *page = strstr(html_of_report(), "<svg viewBox"), *at = page;
+    double line = number_in(&at, "<line class=\"today\"", "x1=\""), unit = 0;
+    for (int pass = 0; pass < 2; pass++) {
+        const char *hollow = page, *solid = page;
+        for (size_t i = 0; i < n; i++) {
+            const struct swing *s = &block->swings->rows.at[i];
+            double changes[] = {s->low - today, s->high - today};
+            double ends[] = {end_of_bar(&hollow, "hollow", line),
+                             end_of_bar(&solid, "solid", line)};
+            for (int k = 0; k < 2; k++) {
+                double wanted = changes[k] * unit;
+                if (pass == 0 && fabs(changes[k]) == widest)
+                    unit = (ends[k] - line) / changes[k];
+                if (pass == 1 && fabs(wanted) > 1.2)
+                    ck_assert_msg(fabs(ends[k] - line - wanted) < 0.25, "%g not %g", ends[k] - line,
+                                  wanted);
+            }
+        }
+    }
+    ck_assert(unit > 0);
+}
+END_TEST
+
 START_TEST(without_rows)
 {
     begin(2.5);
@@ -286,6 +352,7 @@ Suite *suite_report_swings(void)
     tcase_add_test(t, bars_on_one_side_are_told_apart);
     tcase_add_test(t, ends_that_turn_are_marked);
     tcase_add_test(t, as_data);
+    tcase_add_loop_test(t, bars_of_the_picture_are_right, 0, 30);
     tcase_add_test(t, without_rows);
     suite_add_tcase(s, t);
     return s;
