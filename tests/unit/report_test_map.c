@@ -185,11 +185,8 @@ START_TEST(the_key_names_all_choices)
 }
 END_TEST
 
-/* Colour is never alone: each choice that has a cell has its letter in the picture. */
-START_TEST(every_area_has_its_letter)
+static void check_letters(void)
 {
-    struct random r = random_seed(9450 + (uint64_t)_i);
-    fill(&r, random_index(&r, 20) + 3, random_index(&r, 20) + 3);
     struct text t;
     text_init(&t, arena);
     report_write_html(&t, &report);
@@ -202,6 +199,29 @@ START_TEST(every_area_has_its_letter)
         ck_assert_msg(strstr(picture, letter) != NULL, "no %s", sign);
     }
     ck_assert(strstr(picture, ">today</text>") != NULL);
+}
+
+/* Colour is never alone: each choice that has a cell has its letter in the picture. */
+START_TEST(every_area_has_its_letter)
+{
+    struct random r = random_seed(9450 + (uint64_t)_i);
+    fill(&r, random_index(&r, 20) + 3, random_index(&r, 20) + 3);
+    check_letters();
+}
+END_TEST
+
+/* Cells that are narrower than a letter. */
+START_TEST(a_narrow_area_has_its_letter)
+{
+    for (int i = 0; i < 4; i++)
+        map_add_choice(&report, block, "choice", i == 0);
+    for (int i = 0; i < 80; i++)
+        map_add_x(&report, block, i);
+    map_add_y(&report, block, 1);
+    for (size_t i = 0; i < 80; i++)
+        map_add_cell(&report, block, i < 3 ? i : 3, 0);
+    map_set_today(block, 40, 1);
+    check_letters();
 }
 END_TEST
 
@@ -262,6 +282,7 @@ Suite *suite_report_map(void)
     tcase_add_loop_test(t, cells_are_right, 0, 24);
     tcase_add_test(t, the_key_names_all_choices);
     tcase_add_loop_test(t, every_area_has_its_letter, 0, 20);
+    tcase_add_test(t, a_narrow_area_has_its_letter);
     tcase_add_test(t, one_cell);
     tcase_add_test(t, as_data);
     suite_add_tcase(s, t);

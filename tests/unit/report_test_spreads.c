@@ -246,6 +246,18 @@ START_TEST(numbers_on_both_sides_of_0)
 }
 END_TEST
 
+/* From 30 times the least on a scale is logarithmic, where all are above 0. */
+START_TEST(a_log_scale_is_for_what_is_far_apart)
+{
+    add("first", "a", 1, 2, 3, 29.9);
+    ck_assert(strstr(text_of(arena, &report, 120, true, false), "linear scale from 0 to 29.9"));
+    add("second", "a", 1, 2, 3, 30.1);
+    ck_assert(strstr(text_of(arena, &report, 120, true, false), "log scale from 1 to 30.1"));
+    add("third", "a", 0, 2, 3, 30.1);
+    ck_assert(strstr(text_of(arena, &report, 120, true, false), "linear scale from 0 to 30.1"));
+}
+END_TEST
+
 START_TEST(as_csv)
 {
     struct spread *s = add("a, b", "EUR/a", 1, 2, 2.5, 8);
@@ -269,6 +281,7 @@ Suite *suite_report_spreads(void)
     tcase_add_test(t, a_number_that_is_known);
     tcase_add_test(t, numbers_on_both_sides_of_0);
     tcase_add_test(t, strips_of_the_page_are_right);
+    tcase_add_test(t, a_log_scale_is_for_what_is_far_apart);
     tcase_add_test(t, as_csv);
     suite_add_tcase(s, t);
     return s;
