@@ -15,6 +15,9 @@ enum {
     WORDS_COLUMNS = 88,
     LETTER_ACROSS = 90, /* letters of one choice are this far apart */
     LETTER_ALONG = 60,
+    TODAY_ACROSS = 55,
+    TODAY_ALONG = 14,
+    LETTER_ROOM = 24, /* a run this wide reads well with a letter in it */
     SHADES = 6
 };
 
@@ -103,21 +106,6 @@ static size_t run_end(const struct map_plane *g, size_t x, size_t y)
     return end;
 }
 
-/* Letters do not crowd, but every choice has one. */
-static void keep_letter(struct picture *f, size_t choice, double x, double y)
-{
-    bool has_one = false, crowded = false;
-    for (size_t i = 0; i < f->letters.n; i++) {
-        const struct letter *l = &f->letters.at[i];
-        bool own = l->choice == choice;
-        double across = own ? LETTER_ACROSS : SVG_FONT, along = own ? LETTER_ALONG : SVG_FONT;
-        has_one = has_one || own;
-        crowded = crowded || (fabs(l->x - x) < across && fabs(l->y - y) < along);
-    }
-    if (!has_one || !crowded)
-        *array_push(f->html->page.arena, &f->letters) = (struct letter){choice, x, y};
-}
-
 static void put_runs(struct picture *f, size_t y)
 {
     const struct map_plane *g = &f->plane;
@@ -130,7 +118,6 @@ static void put_runs(struct picture *f, size_t y)
             svg_box(f->html, class_of(f->html, g->map, choice), from, top, to - from, bottom - top);
         if (x > 0)
             svg_line(f->html, "edge", from, top, from, bottom);
-        keep_letter(f, choice, (from + to) / 2, (top + bottom) / 2);
     }
 }
 
@@ -149,6 +136,56 @@ static void put_edges(struct picture *f, size_t y)
     }
 }
 
+static bool has_letter(const struct picture *f, size_t choice)
+{
+    for (size_t i = 0; i < f->letters.n; i++)
+        if (f->letters.at[i].choice == choice)
+            return true;
+    return false;
+}
+
+/* Where today and its word stand. */
+static bool is_at_today(const struct picture *f, double x, double y)
+{
+    const struct map_plane *g = &f->plane;
+    if (!map_shows_today(g))
+        return false;
+    return fabs(x - x_at(f, map_place(&g->x, g->map->today_x))) < TODAY_ACROSS &&
+           fabs(y - y_at(f, map_place(&g->y, g->map->today_y))) < TODAY_ALONG;
+}
+
+static bool is_crowded(const struct picture *f, size_t choice, double x, double y)
+{
+    for (size_t i = 0; i < f->letters.n; i++) {
+        const struct letter *l = &f->letters.at[i];
+        bool own = l->choice == choice;
+        double across = own ? LETTER_ACROSS : SVG_FONT, along = own ? LETTER_ALONG : SVG_FONT;
+        if (fabs(l->x - x) < across && fabs(l->y - y) < along)
+            return true;
+    }
+    return is_at_today(f, x, y);
+}
+
+/* In the middle of runs that have room for them; of choices that have none there (`last`), in
+ * the first run that there is. */
+static void find_letters(struct picture *f, bool last)
+{
+    const struct map_plane *g = &f->plane;
+    for (size_t y = 0; y < g->y.n; y++) {
+        double middle = y_at(f, (map_edge(&g->y, y) + map_edge(&g->y, y + 1)) / 2);
+        for (size_t x = 0, end; x < g->x.n; x = end) {
+            end = run_end(g, x, y);
+            size_t choice = map_choice_at(g, x, y);
+            double from = x_at(f, map_edge(&g->x, x)), to = x_at(f, map_edge(&g->x, end));
+            double at = (from + to) / 2;
+            bool wanted = last ? !has_letter(f, choice)
+                               : to - from >= LETTER_ROOM && !is_crowded(f, choice, at, middle);
+            if (wanted)
+                *array_push(f->html->page.arena, &f->letters) = (struct letter){choice, at, middle};
+        }
+    }
+}
+
 static void put_areas(struct picture *f)
 {
     const struct map_plane *g = &f->plane;
@@ -156,6 +193,8 @@ static void put_areas(struct picture *f)
         put_runs(f, y);
     for (size_t y = 1; y < g->y.n; y++)
         put_edges(f, y);
+    find_letters(f, false);
+    find_letters(f, true);
     for (size_t i = 0; i < f->letters.n; i++) {
         const struct letter *l = &f->letters.at[i];
         svg_text(f->html, "letter", l->x, l->y + 0.36 * SVG_FONT, "middle", g->signs[l->choice]);

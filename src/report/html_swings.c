@@ -20,7 +20,7 @@ enum {
     WORDS_COLUMNS = 88
 };
 
-static const double LEAST_WIDTH = 1; /* of the bar of a very small change */
+static const double LEAST_WIDTH = 2.5; /* of the bar of a very small change */
 
 struct picture {
     struct html *html;
