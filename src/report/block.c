@@ -3,12 +3,12 @@
  * report outlives the objects that it tells about. Owns nothing.
  * Invariant: a row holds at most one cell a column; cells that are missing at its
  * end count as empty. */
-#include "report/block.h"
+#include "report/block_add.h"
 
 #include <assert.h>
 #include <math.h>
 
-static const char *keep_text(struct report *r, const char *s)
+const char *report_keep(struct report *r, const char *s)
 {
     return s ? arena_str(r->arena, s) : NULL;
 }
@@ -18,27 +18,27 @@ void report_init(struct report *r, struct arena *a)
     *r = (struct report){.arena = a};
 }
 
-static struct block *add_block(struct report *r, enum block_type type, const char *key,
-                               const char *title)
+struct block *report_add(struct report *r, enum block_type type, const char *key,
+                         const char *title)
 {
     struct block *b = array_push(r->arena, &r->blocks);
     b->type = type;
-    b->key = keep_text(r, key);
-    b->title = keep_text(r, title);
+    b->key = report_keep(r, key);
+    b->title = report_keep(r, title);
     return b;
 }
 
 struct block *report_heading(struct report *r, int level, const char *title)
 {
     assert(level >= 1 && level <= 3 && title);
-    struct block *b = add_block(r, BLOCK_HEADING, NULL, title);
+    struct block *b = report_add(r, BLOCK_HEADING, NULL, title);
     b->level = level;
     return b;
 }
 
 struct block *report_note(struct report *r, const char *key, const char *format, ...)
 {
-    struct block *b = add_block(r, BLOCK_NOTE, key, NULL);
+    struct block *b = report_add(r, BLOCK_NOTE, key, NULL);
     va_list args;
     va_start(args, format);
     b->text = arena_vprintf(r->arena, format, args);
@@ -48,7 +48,7 @@ struct block *report_note(struct report *r, const char *key, const char *format,
 
 struct block *report_pairs(struct report *r, const char *key, const char *title)
 {
-    struct block *b = add_block(r, BLOCK_PAIRS, key, title);
+    struct block *b = report_add(r, BLOCK_PAIRS, key, title);
     block_column(r, b, "name", "", "", STYLE_PLAIN);
     block_column(r, b, "value", "", "", STYLE_PLAIN);
     return b;
@@ -56,13 +56,13 @@ struct block *report_pairs(struct report *r, const char *key, const char *title)
 
 struct block *report_table(struct report *r, const char *key, const char *title)
 {
-    return add_block(r, BLOCK_TABLE, key, title);
+    return report_add(r, BLOCK_TABLE, key, title);
 }
 
 struct block *report_signatures(struct report *r, const char *key, const char *title,
                                 const char *const *roles, size_t n)
 {
-    struct block *b = add_block(r, BLOCK_SIGNATURES, key, title);
+    struct block *b = report_add(r, BLOCK_SIGNATURES, key, title);
     block_column(r, b, "role", "", "", STYLE_PLAIN);
     block_column(r, b, "name", "Name and signature", "", STYLE_PLAIN);
     block_column(r, b, "date", "Date", "", STYLE_PLAIN);
@@ -78,7 +78,7 @@ struct block *report_signatures(struct report *r, const char *key, const char *t
 struct block *report_grid(struct report *r, const char *key, const char *title,
                           const char *currency)
 {
-    struct block *b = add_block(r, BLOCK_GRID, key, title);
+    struct block *b = report_add(r, BLOCK_GRID, key, title);
     b->grid = NEW(r->arena, struct grid);
     b->grid->currency = arena_str(r->arena, currency);
     return b;
@@ -86,7 +86,7 @@ struct block *report_grid(struct report *r, const char *key, const char *title,
 
 struct block *report_curve(struct report *r, const char *key, const char *title)
 {
-    struct block *b = add_block(r, BLOCK_CURVE, key, title);
+    struct block *b = report_add(r, BLOCK_CURVE, key, title);
     b->curve = NEW(r->arena, struct curve);
     curve_set_x(r, b, "x", NULL, NULL, STYLE_PLAIN);
     curve_set_y(r, b, "y", NULL, NULL, STYLE_PLAIN);
@@ -98,9 +98,9 @@ struct column *block_column(struct report *r, struct block *b, const char *key, 
 {
     assert(key && *key);
     struct column *c = array_push(r->arena, &b->columns);
-    c->key = keep_text(r, key);
-    c->head = keep_text(r, head ? head : "");
-    c->unit = keep_text(r, unit ? unit : "");
+    c->key = report_keep(r, key);
+    c->head = report_keep(r, head ? head : "");
+    c->unit = report_keep(r, unit ? unit : "");
     c->style = style;
     return c;
 }
@@ -120,7 +120,7 @@ static struct cell *add_cell(struct report *r, struct row *row, enum cell_type t
 struct cell *row_text(struct report *r, struct row *row, const char *text)
 {
     struct cell *c = add_cell(r, row, text ? CELL_TEXT : CELL_EMPTY);
-    c->text = keep_text(r, text);
+    c->text = report_keep(r, text);
     return c;
 }
 
@@ -136,7 +136,7 @@ struct cell *row_number(struct report *r, struct row *row, double number, const 
 {
     struct cell *c = add_cell(r, row, CELL_NUMBER);
     c->number = number;
-    c->figure = keep_text(r, figure);
+    c->figure = report_keep(r, figure);
     return c;
 }
 
@@ -170,7 +170,7 @@ struct cell *pair_number(struct report *r, struct row *row, double number, const
                          enum number_style style, const char *figure)
 {
     struct cell *c = row_number(r, row, number, figure);
-    c->unit = keep_text(r, unit ? unit : "");
+    c->unit = report_keep(r, unit ? unit : "");
     c->style = style;
     return c;
 }
@@ -179,8 +179,8 @@ struct grid_mark *grid_add_mark(struct report *r, struct block *b, const char *l
                                 const char *name, double frequency, double damage)
 {
     struct grid_mark *m = array_push(r->arena, &b->grid->marks);
-    m->label = keep_text(r, label ? label : "");
-    m->name = keep_text(r, name ? name : "");
+    m->label = report_keep(r, label ? label : "");
+    m->name = report_keep(r, name ? name : "");
     m->frequency = frequency;
     m->damage = damage;
     m->arrow_from = -1;
@@ -193,19 +193,19 @@ struct grid_line *grid_add_line(struct report *r, struct block *b, const char *n
 {
     assert(risk > 0);
     struct grid_line *l = array_push(r->arena, &b->grid->lines);
-    l->name = keep_text(r, name ? name : "");
+    l->name = report_keep(r, name ? name : "");
     l->risk = risk;
-    l->symbol = keep_text(r, symbol ? symbol : "");
+    l->symbol = report_keep(r, symbol ? symbol : "");
     return l;
 }
 
-static struct curve_axis *set_axis(struct report *r, struct curve_axis *axis, const char *key,
+struct curve_axis *report_set_axis(struct report *r, struct curve_axis *axis, const char *key,
                                    const char *head, const char *unit, enum number_style style)
 {
     assert(key && *key);
-    *axis = (struct curve_axis){.key = keep_text(r, key),
-                                .head = keep_text(r, head ? head : ""),
-                                .unit = keep_text(r, unit ? unit : ""),
+    *axis = (struct curve_axis){.key = report_keep(r, key),
+                                .head = report_keep(r, head ? head : ""),
+                                .unit = report_keep(r, unit ? unit : ""),
                                 .style = style};
     return axis;
 }
@@ -213,33 +213,32 @@ static struct curve_axis *set_axis(struct report *r, struct curve_axis *axis, co
 struct curve_axis *curve_set_x(struct report *r, struct block *b, const char *key,
                                const char *head, const char *unit, enum number_style style)
 {
-    return set_axis(r, &b->curve->x, key, head, unit, style);
+    return report_set_axis(r, &b->curve->x, key, head, unit, style);
 }
 
 struct curve_axis *curve_set_y(struct report *r, struct block *b, const char *key,
                                const char *head, const char *unit, enum number_style style)
 {
-    return set_axis(r, &b->curve->y, key, head, unit, style);
+    return report_set_axis(r, &b->curve->y, key, head, unit, style);
 }
 
 struct curve_line *curve_add_line(struct report *r, struct block *b, const char *name,
                                   const char *symbol)
 {
     struct curve_line *l = array_push(r->arena, &b->curve->lines);
-    l->name = keep_text(r, name ? name : "");
-    l->symbol = keep_text(r, symbol ? symbol : "");
+    l->name = report_keep(r, name ? name : "");
+    l->symbol = report_keep(r, symbol ? symbol : "");
     return l;
 }
 
-/* Sums and quotients of such numbers are finite. */
-static bool can_draw(double x, double y)
+bool report_can_draw(double x)
 {
-    return isfinite(x) && isfinite(y) && fabs(x) <= 1e300 && fabs(y) <= 1e300;
+    return isfinite(x) && fabs(x) <= 1e300;
 }
 
 void curve_add_point(struct report *r, struct curve_line *line, double x, double y)
 {
-    assert(can_draw(x, y));
+    assert(report_can_draw(x) && report_can_draw(y));
     assert(line->points.n == 0 || line->points.at[line->points.n - 1].x <= x);
     *array_push(r->arena, &line->points) = (struct curve_point){x, y};
 }
@@ -247,9 +246,9 @@ void curve_add_point(struct report *r, struct curve_line *line, double x, double
 struct curve_mark *curve_add_mark(struct report *r, struct block *b, const char *label, double x,
                                   double y)
 {
-    assert(can_draw(x, y));
+    assert(report_can_draw(x) && report_can_draw(y));
     struct curve_mark *m = array_push(r->arena, &b->curve->marks);
-    m->label = keep_text(r, label ? label : "");
+    m->label = report_keep(r, label ? label : "");
     m->x = x;
     m->y = y;
     return m;

@@ -22,7 +22,10 @@ enum block_type {
     BLOCK_TABLE,
     BLOCK_GRID,
     BLOCK_CURVE,
-    BLOCK_SIGNATURES
+    BLOCK_SIGNATURES,
+    BLOCK_SWINGS,
+    BLOCK_MAP,
+    BLOCK_SPREADS
 };
 
 enum cell_type {
@@ -68,6 +71,8 @@ struct cell {
     const char *mark;   /* a short remark behind the cell such as "!" with a note, or NULL */
     const char *unit;         /* numbers of a BLOCK_PAIRS; a table's are its columns' */
     enum number_style style;
+    int shift; /* in a column whose cells have styles of their own: the number is shown divided
+                  by 10^shift */
 };
 
 struct column {
@@ -79,6 +84,8 @@ struct column {
     unsigned keep;     /* columns with a smaller number are dropped first when the page is
                           too narrow; 0 may never be dropped. JSON and CSV have them all */
     bool data;         /* only in JSON and CSV: what the page says otherwise, by a mark */
+    bool own;          /* each number has the style and the shift of its cell, not the column's */
+    bool drawn;        /* a picture of characters: texts keep their blanks and never wrap */
 };
 
 struct row ARRAY_BODY(struct cell);
@@ -146,6 +153,64 @@ struct curve {
     ARRAY(struct curve_mark) marks;
 };
 
+/* How a result changes when one input moves from its low to its high end. */
+struct swing {
+    const char *label;    /* names the input */
+    const char *words;    /* its two ends: "2e-3 .. 9e-3 per a" */
+    double low, high;     /* the result with the input at its low and high end; as of a point */
+    const char *low_figure, *high_figure;
+    bool low_turns, high_turns; /* what `turns` says holds at that end */
+};
+
+/* Rows in the order in which they are given. */
+struct swings {
+    struct curve_axis axis; /* of the result; always linear */
+    double today;           /* the result with every input as it is */
+    const char *today_figure;
+    const char *turns; /* what the mark of an end says: "the best choice changes at this end" */
+    ARRAY(struct swing) rows;
+};
+
+struct map_choice {
+    const char *name;
+    const char *figure; /* or NULL */
+    bool nothing;       /* doing nothing: a point, not a letter */
+};
+
+struct map_cell {
+    size_t choice; /* its index */
+    double worth;  /* what the choice is worth there */
+};
+
+/* Which choice is best where: a cell for each pair of an x and a y value. */
+struct map {
+    struct curve_axis x, y, worth;
+    ARRAY(double) xs, ys; /* ascending */
+    ARRAY(struct map_choice) choices;
+    ARRAY(struct map_cell) cells; /* by rows: all x of the least y first */
+    bool has_today;
+    double today_x, today_y; /* as of a point */
+    const char *today_x_figure, *today_y_figure;
+};
+
+struct spread_value {
+    double value;       /* as of a point */
+    double error;       /* standard error of the value; below 0: none is known */
+    const char *figure; /* or NULL */
+};
+
+enum spread_part { SPREAD_MEAN, SPREAD_LOW, SPREAD_MEDIAN, SPREAD_HIGH, SPREAD_PARTS };
+
+/* A number that is not known well: its mean, and the values that it is below with 5, 50 and
+ * 95 %. */
+struct spread {
+    const char *label, *unit;
+    enum number_style style;
+    struct spread_value parts[SPREAD_PARTS];
+};
+
+struct spreads ARRAY_BODY(struct spread);
+
 struct block {
     enum block_type type;
     const char *key;     /* in JSON: names the block; NULL: not printed there (headings) */
@@ -162,6 +227,9 @@ struct block {
                             on that are not empty, each behind its head */
     struct grid *grid;   /* BLOCK_GRID */
     struct curve *curve; /* BLOCK_CURVE */
+    struct swings *swings;   /* BLOCK_SWINGS */
+    struct map *map;         /* BLOCK_MAP */
+    struct spreads *spreads; /* BLOCK_SPREADS */
 };
 
 struct report {
@@ -180,6 +248,14 @@ struct block *report_grid(struct report *r, const char *key, const char *title,
                           const char *currency);
 /* Both axes are plain and linear, without key, head and unit, until they are set. */
 struct block *report_curve(struct report *r, const char *key, const char *title);
+
+/* Horizontal bars from the value of today. The axis as of a curve. */
+struct block *report_swings(struct report *r, const char *key, const char *title, double today,
+                            const char *today_figure);
+/* A map in two directions. Its axes as of a curve. */
+struct block *report_map(struct report *r, const char *key, const char *title);
+/* Numbers with their ranges from 5 to 95 %. */
+struct block *report_spreads(struct report *r, const char *key, const char *title);
 
 /* Lines to be signed on paper: for each of the n roles ("Checked") one for a name and one for a
  * date. JSON and CSV have a row for each, its name and date empty. */
@@ -223,6 +299,39 @@ void curve_add_point(struct report *r, struct curve_line *line, double x, double
 struct curve_mark *curve_add_mark(struct report *r, struct block *b, const char *label, double x,
                                   double y);
 
+struct curve_axis *swings_set_axis(struct report *r, struct block *b, const char *key,
+                                   const char *head, const char *unit, enum number_style style);
+/* What the mark of an end says in the key. */
+void swings_set_turns(struct report *r, struct block *b, const char *words);
+/* A row without figures and marks: set them in the result. */
+struct swing *swings_add(struct report *r, struct block *b, const char *label, const char *words,
+                         double low, double high);
+
+struct curve_axis *map_set_x(struct report *r, struct block *b, const char *key, const char *head,
+                             const char *unit, enum number_style style);
+struct curve_axis *map_set_y(struct report *r, struct block *b, const char *key, const char *head,
+                             const char *unit, enum number_style style);
+/* Of what the choices are worth; only its key, head, unit and style count. */
+struct curve_axis *map_set_worth(struct report *r, struct block *b, const char *key,
+                                 const char *head, const char *unit, enum number_style style);
+/* The next value of an axis, above the one before it (asserted). */
+void map_add_x(struct report *r, struct block *b, double x);
+void map_add_y(struct report *r, struct block *b, double y);
+struct map_choice *map_add_choice(struct report *r, struct block *b, const char *name,
+                                  bool nothing);
+/* The next cell; its choice is there already (asserted). A map is drawn when it has all. */
+void map_add_cell(struct report *r, struct block *b, size_t choice, double worth);
+/* Set the figures in the map. */
+void map_set_today(struct block *b, double x, double y);
+/* Whether there is a cell for each x and y, and at least one. */
+bool map_is_whole(const struct map *m);
+
+/* A row whose values are all 0, without errors and figures, until they are set. */
+struct spread *spreads_add(struct report *r, struct block *b, const char *label, const char *unit,
+                           enum number_style style);
+void spread_set(struct report *r, struct spread *s, enum spread_part part, double value,
+                double error, const char *figure);
+
 struct report_format {
     unsigned width; /* columns: 60..200 */
     bool ascii;     /* only ASCII characters */
@@ -231,19 +340,21 @@ struct report_format {
 
 void report_write_text(struct text *out, const struct report *r, const struct report_format *f);
 /* One JSON object: {"blocks": [...]}, every cell as {"value": ..., "unit": ..., "figure": ...}
- * or plain text, the points of a curve as [x, y] in the units of its axes; stable key order;
- * ends in a newline. */
+ * or plain text, the points of a curve as [x, y] in the units of its axes, the cells of a map
+ * as rows of the indices of its choices; stable key order; ends in a newline. */
 void report_write_json(struct text *out, const struct report *r);
 /* Every table of the report as RFC 4180 rows under a header of keys (with "-UNIT"
  * appended where a unit is known: risk-EUR/a), every grid as a table of its marks, and every
  * curve as a table of line, mark, x and y: a row for each point, without a mark, then one for
- * each mark, without a line. Tables are parted by an empty line. */
+ * each mark, without a line. Swings and spreads have a row for each of their rows, maps one for
+ * each cell. Tables are parted by an empty line. */
 void report_write_csv(struct text *out, const struct report *r);
 
 /* One page of HTML that needs nothing else and runs nothing: the blocks in their order, with
- * contents, and grids and curves as pictures (SVG) with their numbers in tables below. Every
- * number is rounded as in the text, and carries the name of its figure in `data-figure`. For
- * screens from 320 pixels and for paper. */
+ * contents, and grids, curves, swings and maps as pictures (SVG) with their numbers in tables
+ * below; of spreads a strip in each row of their table. Every number is rounded as in the text,
+ * and carries the name of its figure in `data-figure`. For screens from 320 pixels and for
+ * paper. */
 void report_write_html(struct text *out, const struct report *r);
 
 /* The parts that other writers and tests use: three significant digits of the exact

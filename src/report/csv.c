@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The tables of a report, the marks of its grids and the points of its curves as
- * comma-separated values (RFC 4180: CR LF, quotes where needed). Control and invisible
- * characters are shown, not sent; texts that a spreadsheet would take for a formula are guarded.
- * Owns nothing. */
+/* The tables of a report and the numbers of its pictures (marks of grids, points of curves, rows of
+ * swings and spreads, cells of maps) as comma-separated values (RFC 4180: CR LF, quotes where
+ * needed). Control and invisible characters are shown, not sent; texts that a spreadsheet would
+ * take for a formula are guarded. Owns nothing. */
 #include <assert.h>
 #include <math.h>
 #include <string.h>
@@ -154,6 +154,90 @@ static void write_curve(struct csv_out *w, const struct curve *c)
         write_place(w, "", c->marks.at[i].label, c->marks.at[i].x, c->marks.at[i].y);
 }
 
+/* --- swings, maps and spreads --- */
+
+static void write_number(struct csv_out *w, double x)
+{
+    const struct cell c = {.type = CELL_NUMBER, .number = x};
+    text_printf(w->out, ",%s", cell_value(w, &c));
+}
+
+static void write_text(struct csv_out *w, const char *s)
+{
+    csv_cell(w, clean_text(w->arena, s, false));
+}
+
+/* ",KEY-UNIT" of a number of the axis, behind "low-" and the like. */
+static void write_axis_header(struct csv_out *w, const char *before, const struct curve_axis *a)
+{
+    const char *name = arena_printf(w->arena, "%s%s", before, a->key);
+    text_byte(w->out, ',');
+    csv_cell(w, header_value(w, name, a->unit, a->style));
+}
+
+/* One row an input; the result of today in each. */
+static void write_swings(struct csv_out *w, const struct swings *s)
+{
+    text_add(w->out, "input,range");
+    write_axis_header(w, "low-", &s->axis);
+    write_axis_header(w, "high-", &s->axis);
+    write_axis_header(w, "today-", &s->axis);
+    text_add(w->out, ",low-turns,high-turns\r\n");
+    for (size_t i = 0; i < s->rows.n; i++) {
+        const struct swing *row = &s->rows.at[i];
+        write_text(w, row->label);
+        text_byte(w->out, ',');
+        write_text(w, row->words);
+        write_number(w, row->low);
+        write_number(w, row->high);
+        write_number(w, s->today);
+        text_printf(w->out, ",%s,%s\r\n", row->low_turns ? "yes" : "no",
+                    row->high_turns ? "yes" : "no");
+    }
+}
+
+/* One row a cell: all x of the least y first. */
+static void write_map(struct csv_out *w, const struct map *m)
+{
+    csv_cell(w, header_value(w, m->x.key, m->x.unit, m->x.style));
+    write_axis_header(w, "", &m->y);
+    text_add(w->out, ",choice");
+    write_axis_header(w, "", &m->worth);
+    text_add(w->out, "\r\n");
+    for (size_t i = 0; i < m->cells.n; i++) {
+        const struct cell x = {.type = CELL_NUMBER, .number = m->xs.at[i % m->xs.n]};
+        text_add(w->out, cell_value(w, &x));
+        write_number(w, m->ys.at[i / m->xs.n]);
+        text_byte(w->out, ',');
+        write_text(w, m->choices.at[m->cells.at[i].choice].name);
+        write_number(w, m->cells.at[i].worth);
+        text_add(w->out, "\r\n");
+    }
+}
+
+static void write_spread(struct csv_out *w, const struct spread *s)
+{
+    write_text(w, s->label);
+    text_byte(w->out, ',');
+    write_text(w, s->style == STYLE_PERCENT ? "" : s->unit);
+    for (int k = 0; k < SPREAD_PARTS; k++)
+        write_number(w, s->parts[k].value);
+    for (int k = 0; k < SPREAD_PARTS; k++) {
+        if (s->parts[k].error >= 0)
+            write_number(w, s->parts[k].error);
+        else
+            text_byte(w->out, ',');
+    }
+    text_add(w->out, "\r\n");
+}
+
+static void write_spreads(struct csv_out *w, const struct spreads *s)
+{
+    text_add(w->out, "label,unit,mean,p5,p50,p95,mean-error,p5-error,p50-error,p95-error\r\n");
+    for (size_t i = 0; i < s->n; i++)
+        write_spread(w, &s->at[i]);
+}
+
 /* --- reports --- */
 
 static void write_table(struct csv_out *w, const struct block *b)
@@ -178,7 +262,22 @@ static bool is_table(const struct block *b)
     case BLOCK_TABLE: return b->columns.n > 0;
     case BLOCK_GRID: return b->grid->marks.n > 0;
     case BLOCK_CURVE: return has_points(b->curve);
+    case BLOCK_SWINGS: return b->swings->rows.n > 0;
+    case BLOCK_MAP: return map_is_whole(b->map);
+    case BLOCK_SPREADS: return b->spreads->n > 0;
     default: return false;
+    }
+}
+
+static void write_block(struct csv_out *w, const struct block *b)
+{
+    switch (b->type) {
+    case BLOCK_GRID: write_grid(w, b->grid); break;
+    case BLOCK_CURVE: write_curve(w, b->curve); break;
+    case BLOCK_SWINGS: write_swings(w, b->swings); break;
+    case BLOCK_MAP: write_map(w, b->map); break;
+    case BLOCK_SPREADS: write_spreads(w, b->spreads); break;
+    default: write_table(w, b);
     }
 }
 
@@ -191,12 +290,7 @@ void report_write_csv(struct text *out, const struct report *r)
         if (!is_table(b))
             continue;
         text_add(out, n++ ? "\r\n" : "");
-        if (b->type == BLOCK_GRID)
-            write_grid(&w, b->grid);
-        else if (b->type == BLOCK_CURVE)
-            write_curve(&w, b->curve);
-        else
-            write_table(&w, b);
+        write_block(&w, b);
     }
     arena_free(w.arena);
 }

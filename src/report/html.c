@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The HTML writer: one page that needs nothing else, the same blocks in the same order as
- * the text writer's. Headings, notes and the contents are written here; tables, grids and
- * curves have files of their own. Owns the scratch arena of one writing.
+ * the text writer's. Headings, notes and the contents are written here; tables and pictures
+ * have files of their own. Owns the scratch arena of one writing.
  * Invariant: no script, no address of anything outside the page, one <style>. */
 #include "report/html.h"
 
@@ -135,6 +135,9 @@ static void put_block(struct html *h, const struct block *b, const char *id)
     case BLOCK_GRID: html_grid(h, b, id); break;
     case BLOCK_CURVE: html_curve(h, b, id); break;
     case BLOCK_SIGNATURES: html_signatures(h, b, id); break;
+    case BLOCK_SWINGS: html_swings(h, b, id); break;
+    case BLOCK_MAP: html_map(h, b, id); break;
+    case BLOCK_SPREADS: html_spreads(h, b, id); break;
     }
 }
 
@@ -154,11 +157,16 @@ static const char *title_of(const struct report *r)
     return title ? title : key ? key : "Report";
 }
 
+static bool is_picture(const struct block *b)
+{
+    return b->grid || b->curve || b->swings || b->map || b->spreads;
+}
+
 static bool has_figures(const struct report *r)
 {
     for (size_t i = 0; i < r->blocks.n; i++) {
         const struct block *b = &r->blocks.at[i];
-        if (b->type == BLOCK_GRID || b->type == BLOCK_CURVE)
+        if (is_picture(b))
             return true;
         for (size_t j = 0; j < b->rows.n; j++)
             for (size_t k = 0; k < b->rows.at[j].n; k++)

@@ -35,6 +35,13 @@ const char *html_id(struct html *h, const char *s);
  * see it, and closed by html_raw(h, "</div>\n"). With `wide` it can have the focus. */
 void html_open_scroll(struct html *h, const char *kind, const char *name, bool wide);
 
+/* A figure with the block's title, closed by html_raw(h, "</figure>\n"). */
+void html_open_figure(struct html *h, const struct block *b, const char *id);
+/* What names its picture: the title, or the section that it is in. */
+const char *html_picture_title(const struct html *h, const struct block *b);
+/* A remark below a picture; figure: NULL, or the name of that which it tells. */
+void html_remark(struct html *h, const char *words, const char *figure);
+
 /* The style of every page. */
 extern const char *const html_style[];
 extern const size_t html_style_parts;
@@ -42,9 +49,15 @@ extern const size_t html_style_parts;
 /* A table: `caption` or NULL; `signs`: markup for the first column's cells, or NULL. */
 void html_table(struct html *h, const struct block *b, const char *id, const char *caption,
                 const char *const *signs);
+/* The same with markup for the cells of its drawn column. */
+void html_table_drawn(struct html *h, const struct block *b, const char *id, const char *caption,
+                      const char *const *drawn);
 void html_pairs(struct html *h, const struct block *b, const char *id);
 void html_signatures(struct html *h, const struct block *b, const char *id);
 void html_grid(struct html *h, const struct block *b, const char *id);
 void html_curve(struct html *h, const struct block *b, const char *id);
+void html_swings(struct html *h, const struct block *b, const char *id);
+void html_map(struct html *h, const struct block *b, const char *id);
+void html_spreads(struct html *h, const struct block *b, const char *id);
 
 #endif

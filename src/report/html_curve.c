@@ -293,11 +293,8 @@ static void put_key(struct html *h, const struct curve_plane *g)
     if (c->marks.n)
         html_table(h, curve_key_marks(&h->page, g), NULL, NULL, marks);
     struct lines remarks = curve_key_remarks(&h->page, g);
-    for (size_t i = 0; i < remarks.n; i++) {
-        html_raw(h, "<p class=\"remark\">");
-        html_text(h, remarks.at[i]);
-        html_raw(h, "</p>\n");
-    }
+    for (size_t i = 0; i < remarks.n; i++)
+        html_remark(h, remarks.at[i], NULL);
 }
 
 static void put_content(struct html *h, const struct block *b)
@@ -309,21 +306,13 @@ static void put_content(struct html *h, const struct block *b)
     }
     curve_plane_range(&f.plane);
     if (!f.plane.empty)
-        put_picture(&f, b->title && *b->title ? b->title : h->section);
+        put_picture(&f, html_picture_title(h, b));
     put_key(h, &f.plane);
 }
 
 void html_curve(struct html *h, const struct block *b, const char *id)
 {
-    html_raw(h, "<figure");
-    if (id)
-        html_attribute(h, "id", id);
-    html_raw(h, ">\n");
-    if (b->title && *b->title) {
-        html_raw(h, "<figcaption>");
-        html_text(h, b->title);
-        html_raw(h, "</figcaption>\n");
-    }
+    html_open_figure(h, b, id);
     put_content(h, b);
     html_raw(h, "</figure>\n");
 }

@@ -491,26 +491,15 @@ static void put_key(struct html *h, const struct grid_plane *g)
         put_signs(h, g);
     html_table(h, grid_key_marks(&h->page, g->grid), NULL, NULL, NULL);
     struct lines remarks = grid_key_remarks(g);
-    for (size_t i = 0; i < remarks.n; i++) {
-        html_raw(h, "<p class=\"remark\">");
-        html_text(h, remarks.at[i]);
-        html_raw(h, "</p>\n");
-    }
+    for (size_t i = 0; i < remarks.n; i++)
+        html_remark(h, remarks.at[i], NULL);
 }
 
 void html_grid(struct html *h, const struct block *b, const char *id)
 {
-    const char *title = b->title && *b->title ? b->title : h->section;
+    const char *title = html_picture_title(h, b);
     struct picture f = {.html = h, .plane = {.page = &h->page, .grid = b->grid}};
-    html_raw(h, "<figure");
-    if (id)
-        html_attribute(h, "id", id);
-    html_raw(h, ">\n");
-    if (b->title && *b->title) {
-        html_raw(h, "<figcaption>");
-        html_text(h, b->title);
-        html_raw(h, "</figcaption>\n");
-    }
+    html_open_figure(h, b, id);
     choose_decades(&f);
     if (f.plane.n_placed)
         put_picture(&f, title);

@@ -40,6 +40,16 @@ void svg_line(struct html *h, const char *class, double x1, double y1, double x2
                 svg_length(a, x1), svg_length(b, y1), svg_length(c, x2), svg_length(d, y2));
 }
 
+void svg_box(struct html *h, const char *class, double x, double y, double width, double height)
+{
+    char a[32], b[32], c[32], d[32];
+    svg_length(a, x);
+    svg_length(b, y);
+    svg_length(c, x + width);
+    svg_length(d, y + height);
+    text_printf(h->out, "<path class=\"%s\" d=\"M%s %sH%sV%sH%sZ\"/>\n", class, a, b, c, d, a);
+}
+
 void svg_text(struct html *h, const char *class, double x, double y, const char *anchor,
               const char *s)
 {
@@ -87,6 +97,18 @@ const char *svg_sample(struct html *h, const char *class, const char *symbol)
     svg_line(&o, class, 0, 8, 56, 8);
     if (*symbol)
         svg_text(&o, "symbol", 28, 12, "middle", symbol);
+    html_raw(&o, "</svg>");
+    return text_str(&out);
+}
+
+const char *svg_box_sample(struct html *h, const char *class, const char *sign)
+{
+    struct text out;
+    struct html o = beside(h, &out);
+    text_printf(&out, sample_opening, 28, 28);
+    svg_box(&o, class, 1, 1, 26, 14);
+    if (*sign)
+        svg_text(&o, "letter", 14, 12, "middle", sign);
     html_raw(&o, "</svg>");
     return text_str(&out);
 }

@@ -15,6 +15,8 @@ const char *svg_length(char *buf, double x);
 /* The element, its title and what it shows in words; closed by html_raw(h, "</svg>\n"). */
 void svg_open(struct html *h, int height, const char *title, const char *words);
 void svg_line(struct html *h, const char *class, double x1, double y1, double x2, double y2);
+/* A rectangle; x, y: its upper left corner. */
+void svg_box(struct html *h, const char *class, double x, double y, double width, double height);
 /* anchor: "start", "middle" or "end", of the text's base line. */
 void svg_text(struct html *h, const char *class, double x, double y, const char *anchor,
               const char *s);
@@ -25,6 +27,8 @@ void svg_text_aslant(struct html *h, const char *class, double x, double y, int 
 const char *svg_line_class(struct html *h, size_t i);
 /* A short piece of such a line with its symbol, for a key. */
 const char *svg_sample(struct html *h, const char *class, const char *symbol);
+/* A rectangle with a sign in it, for a key. */
+const char *svg_box_sample(struct html *h, const char *class, const char *sign);
 /* At least the width of s in SVG_FONT on the usual fonts without serifs. s is clean. */
 double svg_text_width(const char *s);
 

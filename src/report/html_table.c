@@ -130,7 +130,8 @@ static size_t naming_column(const struct table_shape *t)
     return t->n_columns;
 }
 
-static void put_row(struct html *h, const struct table_shape *t, size_t i, const char *sign)
+static void put_row(struct html *h, const struct table_shape *t, size_t i, const char *sign,
+                    const char *drawn)
 {
     size_t naming = naming_column(t);
     html_raw(h, "<tr>");
@@ -139,6 +140,8 @@ static void put_row(struct html *h, const struct table_shape *t, size_t i, const
             continue;
         if (j == 0 && sign)
             text_printf(h->out, "<td>%s</td>", sign);
+        else if (t->columns[j].drawn && drawn)
+            text_printf(h->out, "<td class=\"drawn\">%s</td>", drawn);
         else
             put_cell(h, &t->columns[j], &t->cells[i * t->n_columns + j],
                      cell_of(t->block, i, j)->figure, j == naming);
@@ -185,7 +188,7 @@ static bool fits_paper(const struct table_shape *t)
 }
 
 static void put_table(struct html *h, const struct block *b, const char *id, const char *caption,
-                      const char *const *signs)
+                      const char *const *signs, const char *const *drawn)
 {
     struct table_shape t = table_shape_of(&h->page, b);
     assert(t.fits);
@@ -197,7 +200,7 @@ static void put_table(struct html *h, const struct block *b, const char *id, con
     put_heads(h, &t);
     html_raw(h, "<tbody>\n");
     for (size_t i = 0; i < t.n_rows; i++)
-        put_row(h, &t, i, signs ? signs[i] : NULL);
+        put_row(h, &t, i, signs ? signs[i] : NULL, drawn ? drawn[i] : NULL);
     if (t.n_rows == 0)
         put_none(h, &t);
     html_raw(h, "</tbody>\n</table>\n</div>\n");
@@ -278,7 +281,13 @@ void html_table(struct html *h, const struct block *b, const char *id, const cha
     else if (b->entries)
         put_entries(h, b, id, caption);
     else
-        put_table(h, b, id, caption, signs);
+        put_table(h, b, id, caption, signs, NULL);
+}
+
+void html_table_drawn(struct html *h, const struct block *b, const char *id, const char *caption,
+                      const char *const *drawn)
+{
+    put_table(h, b, id, caption, NULL, drawn);
 }
 
 /* --- named values --- */

@@ -120,3 +120,30 @@ void html_open_scroll(struct html *h, const char *kind, const char *name, bool w
     }
     html_raw(h, ">\n");
 }
+
+void html_open_figure(struct html *h, const struct block *b, const char *id)
+{
+    html_raw(h, "<figure");
+    if (id)
+        html_attribute(h, "id", id);
+    html_raw(h, ">\n");
+    if (!b->title || !*b->title)
+        return;
+    html_raw(h, "<figcaption>");
+    html_text(h, b->title);
+    html_raw(h, "</figcaption>\n");
+}
+
+const char *html_picture_title(const struct html *h, const struct block *b)
+{
+    return b->title && *b->title ? b->title : h->section;
+}
+
+void html_remark(struct html *h, const char *words, const char *figure)
+{
+    html_raw(h, "<p class=\"remark\"");
+    html_figure(h, figure);
+    html_raw(h, ">");
+    html_text(h, words);
+    html_raw(h, "</p>\n");
+}

@@ -298,10 +298,135 @@ static void put_curve(struct json *j, const struct curve *c)
     text_byte(j->out, ']');
 }
 
+/* --- swings --- */
+
+static void put_swing(struct json *j, const struct curve_axis *axis, const struct swing *s)
+{
+    text_byte(j->out, '{');
+    put_member(j, "label", s->label, true);
+    put_member(j, "range", s->words, false);
+    put_place(j, axis, "low", s->low, s->low_figure);
+    put_key(j, "low-turns", false);
+    text_add(j->out, s->low_turns ? "true" : "false");
+    put_place(j, axis, "high", s->high, s->high_figure);
+    put_key(j, "high-turns", false);
+    text_add(j->out, s->high_turns ? "true}" : "false}");
+}
+
+static void put_swings(struct json *j, const struct swings *s)
+{
+    struct curve_axis axis = s->axis;
+    axis.log = false;
+    put_axis(j, "axis", &axis);
+    put_place(j, &axis, "today", s->today, s->today_figure);
+    put_member(j, "turns", s->turns, false);
+    open_list(j, "rows");
+    for (size_t i = 0; i < s->rows.n; i++) {
+        next_line(j, i);
+        put_swing(j, &axis, &s->rows.at[i]);
+    }
+    text_byte(j->out, ']');
+}
+
+/* --- maps --- */
+
+static void put_map_values(struct json *j, const char *name, const double *values, size_t n)
+{
+    open_list(j, name);
+    for (size_t i = 0; i < n; i++) {
+        text_add(j->out, i ? ", " : "");
+        put_double(j, values[i]);
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_choices(struct json *j, const struct map *m)
+{
+    open_list(j, "choices");
+    for (size_t i = 0; i < m->choices.n; i++) {
+        const struct map_choice *c = &m->choices.at[i];
+        next_line(j, i);
+        text_byte(j->out, '{');
+        put_member(j, "name", c->name, true);
+        if (c->figure)
+            put_member(j, "figure", c->figure, false);
+        put_key(j, "nothing", false);
+        text_add(j->out, c->nothing ? "true}" : "false}");
+    }
+    text_byte(j->out, ']');
+}
+
+/* Indices of choices, or their worths: a row for each y, from the least. */
+static void put_cells(struct json *j, const char *name, const struct map *m, bool worths)
+{
+    open_list(j, name);
+    size_t n = map_is_whole(m) ? m->cells.n : 0;
+    for (size_t i = 0; i < n; i++) {
+        bool first = i % m->xs.n == 0;
+        if (first && i)
+            text_byte(j->out, ']');
+        if (first)
+            next_line(j, i);
+        text_add(j->out, first ? "[" : ", ");
+        put_double(j, worths ? m->cells.at[i].worth : (double)m->cells.at[i].choice);
+    }
+    text_add(j->out, n ? "]]" : "]");
+}
+
+static void put_map(struct json *j, const struct map *m)
+{
+    put_axis(j, "x", &m->x);
+    put_axis(j, "y", &m->y);
+    put_axis(j, "worth", &m->worth);
+    put_choices(j, m);
+    put_map_values(j, "x-values", m->xs.at, m->xs.n);
+    put_map_values(j, "y-values", m->ys.at, m->ys.n);
+    put_cells(j, "rows", m, false);
+    put_cells(j, "worths", m, true);
+    if (!m->has_today)
+        return;
+    put_key(j, "today", false);
+    text_byte(j->out, '{');
+    put_member(j, "label", "today", true);
+    put_place(j, &m->x, "x", m->today_x, m->today_x_figure);
+    put_place(j, &m->y, "y", m->today_y, m->today_y_figure);
+    text_byte(j->out, '}');
+}
+
+/* --- spreads --- */
+
+static void put_spread(struct json *j, const struct spread *s)
+{
+    static const char *const names[SPREAD_PARTS] = {"mean", "p5", "p50", "p95"};
+    const char *unit = s->style == STYLE_PERCENT ? NULL : s->unit;
+    text_byte(j->out, '{');
+    put_member(j, "label", s->label, true);
+    for (int k = 0; k < SPREAD_PARTS; k++) {
+        put_key(j, names[k], false);
+        put_value(j, s->parts[k].value, unit, s->parts[k].figure);
+        if (s->parts[k].error >= 0) {
+            put_key(j, "error", false);
+            put_double(j, s->parts[k].error);
+        }
+        text_byte(j->out, '}');
+    }
+    text_byte(j->out, '}');
+}
+
+static void put_spreads(struct json *j, const struct spreads *s)
+{
+    open_list(j, "rows");
+    for (size_t i = 0; i < s->n; i++) {
+        next_line(j, i);
+        put_spread(j, &s->at[i]);
+    }
+    text_byte(j->out, ']');
+}
+
 static void put_block(struct json *j, const struct block *b)
 {
-    static const char *const types[] = {"heading", "note",  "pairs",     "table",
-                                        "grid",    "curve", "signatures"};
+    static const char *const types[] = {"heading", "note",       "pairs",  "table", "grid",
+                                        "curve",   "signatures", "swings", "map",   "spreads"};
     text_byte(j->out, '{');
     put_member(j, "key", b->key, true);
     put_member(j, "type", types[b->type], false);
@@ -315,6 +440,9 @@ static void put_block(struct json *j, const struct block *b)
     case BLOCK_TABLE: put_table(j, b); break;
     case BLOCK_GRID: put_grid(j, b->grid); break;
     case BLOCK_CURVE: put_curve(j, b->curve); break;
+    case BLOCK_SWINGS: put_swings(j, b->swings); break;
+    case BLOCK_MAP: put_map(j, b->map); break;
+    case BLOCK_SPREADS: put_spreads(j, b->spreads); break;
     }
     text_byte(j->out, '}');
 }

@@ -192,6 +192,18 @@ int money_shift(int largest, int smallest)
     return shift > 0 && small && room ? shift - 3 : shift;
 }
 
+int number_shift(enum number_style style, const char *unit, double least, double greatest)
+{
+    double largest = fmax(fabs(least), fabs(greatest));
+    double smallest = fmin(fabs(least), fabs(greatest));
+    if (style == STYLE_PERCENT)
+        return -2;
+    if (style != STYLE_MONEY || !*unit || largest == 0)
+        return 0;
+    return money_shift(number_exponent(largest),
+                       number_exponent(smallest > 0 ? smallest : largest));
+}
+
 const char *money_prefix(int shift)
 {
     static const char *const prefixes[] = {"", "k", "M", "G"};

@@ -26,6 +26,10 @@ int number_exponent(double x);
  * then has four digits before its point and the smallest would stand below 0.1 otherwise. */
 int money_shift(int largest, int smallest);
 
+/* The shift of numbers of one unit that lie between these: of money with a unit that of its
+ * prefix, of a percentage -2. */
+int number_shift(enum number_style style, const char *unit, double least, double greatest);
+
 /* "", "k", "M" or "G". */
 const char *money_prefix(int shift);
 

@@ -63,5 +63,8 @@ const char *cell_words(const struct page *p, const struct cell *c, enum number_s
 void page_table(struct page *p, const struct block *b);
 void page_grid(struct page *p, const struct grid *g);
 void page_curve(struct page *p, const struct curve *c);
+void page_swings(struct page *p, const struct swings *s);
+void page_map(struct page *p, const struct map *m);
+void page_spreads(struct page *p, const struct spreads *s);
 
 #endif

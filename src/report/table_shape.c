@@ -16,7 +16,8 @@ enum {
     LONGEST_WORD = 24, /* words up to this are whole while others can go */
     BROKEN_WORD = 8,   /* the last resort */
     EASY_TEXT = 28,    /* a text column this wide reads well beside return periods */
-    EASY_HEAD = 14     /* a head may widen a column of numbers so far */
+    EASY_HEAD = 14,    /* a head may widen a column of numbers so far */
+    EASY_OWN_HEAD = 8  /* the same where cells have styles of their own: beside a picture */
 };
 
 static size_t larger(size_t a, size_t b)
@@ -51,6 +52,8 @@ static int column_shift(const struct block *b, size_t column)
 {
     const struct column *c = &b->columns.at[column];
     int largest = -400, smallest = 400;
+    if (c->own)
+        return 0;
     if (c->style == STYLE_PERCENT)
         return -2;
     if (c->style != STYLE_MONEY || !c->unit || !*c->unit)
@@ -89,13 +92,22 @@ static void show_value(const struct page *p, struct shown *s, const struct cell 
         s->period = arena_str(p->arena, return_period_text(period, c->number));
 }
 
+/* A finite number in the style and with the shift of its cell. */
+static void show_own(const struct page *p, struct shown *s, const struct cell *c)
+{
+    char digits[32];
+    show_number(p, s, number_scaled(digits, c->number, c->style, c->shift));
+}
+
 /* Nothing is a dash among numbers, and a blank among texts. */
 static struct shown show_cell(const struct page *p, const struct cell *c,
                               const struct column *column, bool number, int shift)
 {
     struct shown s = {
         .left = "", .right = "", .text = "", .period = "", .mark = page_clean(p, c->mark)};
-    if (c->type == CELL_NUMBER || c->type == CELL_COUNT)
+    if (column->own && c->type == CELL_NUMBER)
+        show_own(p, &s, c);
+    else if (c->type == CELL_NUMBER || c->type == CELL_COUNT)
         show_value(p, &s, c, column->style, shift);
     else if (c->type != CELL_EMPTY)
         s.text = cell_words(p, c, STYLE_PLAIN, "");
@@ -125,6 +137,8 @@ static void show_column(const struct page *p, struct table_shape *t, size_t j)
     to->to_right = to->number || c->right;
     to->keep = c->keep;
     to->data = c->data;
+    to->drawn = c->drawn;
+    to->own = c->own;
     to->dropped = c->data;
     for (size_t i = 0; i < t->n_rows; i++)
         t->cells[i * t->n_columns + j] =
@@ -153,8 +167,10 @@ static void measure_column(const struct page *p, struct table_shape *t, size_t j
     }
     size_t numbers = c->left + c->right, head = utf8_columns(c->head);
     c->least = larger(larger(numbers, smaller(word, longest)), 2);
+    if (c->drawn)
+        c->least = larger(c->least, whole);
     if (c->number)
-        head = smaller(head, EASY_HEAD);
+        head = smaller(head, c->own ? EASY_OWN_HEAD : EASY_HEAD);
     c->natural = larger(larger(c->least, word), larger(whole, head));
     if (!c->number && longest == LONGEST_WORD)
         c->least = larger(c->least, smaller(c->natural, LEAST_TEXT));
@@ -260,4 +276,16 @@ struct table_shape table_shape_of(const struct page *p, const struct block *b)
     }
     fit(p, &t);
     return t;
+}
+
+bool table_has_room(const struct page *p, const struct block *b, unsigned keep, bool easy)
+{
+    struct table_shape t = table_shape_of(p, b);
+    for (size_t j = 0; j < t.n_columns; j++) {
+        const struct table_column *c = &t.columns[j];
+        bool wraps = !c->number && !c->drawn && c->width < smaller(c->natural, EASY_TEXT);
+        if (!t.fits || (c->dropped && c->keep >= keep) || (easy && !c->dropped && wraps))
+            return false;
+    }
+    return true;
 }

@@ -26,6 +26,8 @@ struct table_column {
     bool to_right; /* head and text to the right */
     bool dropped;
     bool data;           /* never on a page */
+    bool own;            /* numbers with styles of their own: heads hardly widen it */
+    bool drawn;          /* a picture of characters, as wide as it is */
     unsigned keep;
     size_t left, right; /* columns up to the point; behind it, with mark */
     size_t least, natural, width;
@@ -42,5 +44,8 @@ struct table_shape {
 };
 
 struct table_shape table_shape_of(const struct page *p, const struct block *b);
+/* Whether the page has room for all columns of this keep or more, and of 0; with `easy` also
+ * for texts that need not wrap more than reads well. */
+bool table_has_room(const struct page *p, const struct block *b, unsigned keep, bool easy);
 
 #endif

@@ -18,7 +18,9 @@ static struct stack stack_of(const struct page *p, const struct table_column *c,
                              const struct shown *s)
 {
     struct stack stack = {.number = s->number ? s : NULL};
-    if (!s->number)
+    if (!s->number && c->drawn)
+        *array_push(p->arena, &stack.lines) = s->text;
+    else if (!s->number)
         stack.lines = page_wrap(p, s->text, c->width);
     return stack;
 }

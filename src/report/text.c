@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The text writer: headings, notes and pairs, and the order of the blocks. Tables,
- * grids and curves have files of their own. Owns the scratch arena of one writing.
+/* The text writer: headings, notes and pairs, and the order of the blocks. Tables
+ * and pictures have files of their own. Owns the scratch arena of one writing.
  * Invariant: blocks are parted by one empty line; a chapter by two. */
 #include <assert.h>
 #include <math.h>
@@ -270,6 +270,9 @@ static void write_block(struct page *p, const struct block *b)
     case BLOCK_GRID: page_grid(p, b->grid); break;
     case BLOCK_CURVE: page_curve(p, b->curve); break;
     case BLOCK_SIGNATURES: write_signatures(p, b); break;
+    case BLOCK_SWINGS: page_swings(p, b->swings); break;
+    case BLOCK_MAP: page_map(p, b->map); break;
+    case BLOCK_SPREADS: page_spreads(p, b->spreads); break;
     }
 }
 

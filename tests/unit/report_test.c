@@ -74,6 +74,9 @@ int main(int argc, char **argv)
     srunner_add_suite(sr, suite_report_page());
     srunner_add_suite(sr, suite_report_grid());
     srunner_add_suite(sr, suite_report_curve());
+    srunner_add_suite(sr, suite_report_swings());
+    srunner_add_suite(sr, suite_report_map());
+    srunner_add_suite(sr, suite_report_spreads());
     srunner_add_suite(sr, suite_report_html());
     srunner_add_suite(sr, suite_report_golden());
     srunner_run_all(sr, CK_NORMAL);

@@ -15,6 +15,9 @@ Suite *suite_report_page(void);
 Suite *suite_report_grid(void);
 Suite *suite_report_curve(void);
 Suite *suite_report_html(void);
+Suite *suite_report_map(void);
+Suite *suite_report_spreads(void);
+Suite *suite_report_swings(void);
 Suite *suite_report_golden(void);
 
 /* Folder of the goldens: the program's first argument. */

@@ -137,6 +137,93 @@ static void add_risks(struct report *r)
     }
 }
 
+/* What the yearly cost would be at both ends of what is not known, widest first. */
+static void add_swings(struct report *r)
+{
+    struct block *b =
+        report_swings(r, "swings", "What moves the yearly cost", 123456, "D-TEST.today");
+    swings_set_axis(r, b, "cost", "Yearly cost", "EUR/a", STYLE_MONEY);
+    swings_set_turns(r, b, "another option is best at this end");
+    static const struct {
+        const char *label, *words;
+        double low, high;
+        bool low_turns, high_turns;
+    } rows[] = {
+        {"Faults on busbar 1", "2e-3 .. 9e-3 per a", 81200, 214000, false, true},
+        {"Hours until supply is back after a fault", "2 .. 12 h", 99100, 181000, false, false},
+        {"Price of energy not supplied", "4 .. 11 EUR/kWh", 141000, 108000, true, false},
+        {"Share of tests that find nothing", "0.1 .. 0.4", 131000, 139000, false, false},
+        {"母線 spare parts", "0 .. 3", 123456, 126000, false, false},
+        {"Discount rate", "2 % .. 5 %", 123460, 123450, false, false},
+        {"Number of feeders", "", 123456, 123456, false, false}};
+    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
+        struct swing *s = swings_add(r, b, rows[i].label, rows[i].words, rows[i].low, rows[i].high);
+        s->low_turns = rows[i].low_turns;
+        s->high_turns = rows[i].high_turns;
+        s->low_figure = i == 0 ? "D-TEST.low" : NULL;
+    }
+}
+
+static size_t choice_at(double x, double y)
+{
+    return x * y < 0.003 ? 0 : x > 4 && y > 0.006 ? 3 : x >= 1.5 ? 1 : 2;
+}
+
+/* Which option is best by the rate of faults and the interval between tests. */
+static void add_map(struct report *r)
+{
+    struct block *b = report_map(r, "map", "Best option by rate and interval");
+    map_set_x(r, b, "interval", "Interval between tests", "a", STYLE_PLAIN)->log = true;
+    map_set_y(r, b, "rate", "Faults", "1/a", STYLE_FREQUENCY)->log = true;
+    map_set_worth(r, b, "worth", "Worth", "EUR", STYLE_MONEY);
+    map_add_choice(r, b, "Leave all as it is", true);
+    map_add_choice(r, b, "Test twice as often", false)->figure = "D-TEST.best";
+    map_add_choice(r, b, "Fit a second protection", false);
+    map_add_choice(r, b, "Both", false);
+    for (int i = 0; i < 13; i++)
+        map_add_x(r, b, 0.25 * (1 << i / 2) * (i % 2 ? 1.5 : 1));
+    for (int k = 0; k < 9; k++)
+        map_add_y(r, b, 0.001 * (1 << k / 2) * (k % 2 ? 1.5 : 1));
+    for (size_t k = 0; k < b->map->ys.n; k++) {
+        for (size_t i = 0; i < b->map->xs.n; i++) {
+            double x = b->map->xs.at[i], y = b->map->ys.at[k];
+            map_add_cell(r, b, choice_at(x, y), choice_at(x, y) ? 2.385e5 * x * y : 0);
+        }
+    }
+    map_set_today(b, 2, 0.00294);
+    b->map->today_y_figure = "H-BUS1.frequency";
+}
+
+static void add_spreads(struct report *r)
+{
+    struct block *b = report_spreads(r, "spreads", "How well the figures are known");
+    static const struct {
+        const char *label, *unit;
+        enum number_style style;
+        double mean, p5, p50, p95, error;
+    } rows[] = {{"Risk of all hazards", "EUR/a", STYLE_MONEY, 123456, 21300, 89100, 341000, 1200},
+                {"Frequency of a busbar fault", "1/a", STYLE_FREQUENCY, 2.94e-3, 1.1e-4, 1.9e-3,
+                 9.2e-3, 2.2e-5},
+                {"Failure on demand of the main protection of busbar 1", "", STYLE_PERCENT, 0.0123,
+                 0.0047, 0.0111, 0.0236, -1}};
+    for (size_t i = 0; i < sizeof rows / sizeof *rows; i++) {
+        struct spread *s = spreads_add(r, b, rows[i].label, rows[i].unit, rows[i].style);
+        spread_set(r, s, SPREAD_MEAN, rows[i].mean, rows[i].error, "risk");
+        spread_set(r, s, SPREAD_LOW, rows[i].p5, -1, NULL);
+        spread_set(r, s, SPREAD_MEDIAN, rows[i].p50, -1, NULL);
+        spread_set(r, s, SPREAD_HIGH, rows[i].p95, rows[i].error * 3, NULL);
+    }
+    b = report_spreads(r, "worths", "Worth of the options");
+    static const double worths[][4] = {
+        {41000, -12000, 38000, 99000}, {15200, 14100, 15200, 16400}, {0, 0, 0, 0}};
+    static const char *const names[] = {"Test twice a year", "Fit 87B", "Nothing"};
+    for (size_t i = 0; i < 3; i++) {
+        struct spread *s = spreads_add(r, b, names[i], "EUR/a", STYLE_MONEY);
+        for (int k = 0; k < SPREAD_PARTS; k++)
+            spread_set(r, s, (enum spread_part)k, worths[i][k], -1, NULL);
+    }
+}
+
 static struct report sample(struct arena *a)
 {
     struct report r;
@@ -148,6 +235,9 @@ static struct report sample(struct arena *a)
     add_sawtooth(&r);
     add_costs(&r);
     add_risks(&r);
+    add_swings(&r);
+    add_map(&r);
+    add_spreads(&r);
     return r;
 }
 

@@ -143,6 +143,14 @@ static void check_pictures(const char *words, const struct block *b)
         check_holds(words, as_valid(b->curve->lines.at[i].name));
     for (size_t i = 0; b->curve && i < b->curve->marks.n; i++)
         check_holds(words, as_valid(b->curve->marks.at[i].label));
+    for (size_t i = 0; b->swings && i < b->swings->rows.n; i++) {
+        check_holds(words, as_valid(b->swings->rows.at[i].label));
+        check_holds(words, as_valid(b->swings->rows.at[i].words));
+    }
+    for (size_t i = 0; b->map && map_is_whole(b->map) && i < b->map->choices.n; i++)
+        check_holds(words, as_valid(b->map->choices.at[i].name));
+    for (size_t i = 0; b->spreads && i < b->spreads->n; i++)
+        check_holds(words, as_valid(b->spreads->at[i].label));
 }
 
 START_TEST(random_pages_are_well_formed_and_whole)

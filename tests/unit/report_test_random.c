@@ -145,10 +145,73 @@ void add_some_curve(struct random *r, struct report *report)
         curve_add_mark(report, b, some_text(r), drawable(some_number(r)), drawable(some_number(r)));
 }
 
+static enum number_style some_style(struct random *r)
+{
+    return (enum number_style)random_index(r, 8);
+}
+
+void add_some_swings(struct random *r, struct report *report)
+{
+    struct block *b =
+        report_swings(report, "swings", some_text(r), drawable(some_number(r)), some_text(r));
+    swings_set_axis(report, b, "result", some_text(r), some_text(r), some_style(r));
+    swings_set_turns(report, b, some_text(r));
+    for (size_t i = random_index(r, 6); i-- > 0;) {
+        double low = drawable(some_number(r)), high = drawable(some_number(r));
+        struct swing *s = swings_add(report, b, some_text(r), some_text(r), low, high);
+        s->low_turns = random_index(r, 2);
+        s->high_turns = random_index(r, 2);
+        s->low_figure = some_text(r);
+    }
+}
+
+/* A number with room above it. */
+static double some_start(struct random *r)
+{
+    double x = some_number(r);
+    return fabs(x) <= 1e250 ? x : 2.385;
+}
+
+void add_some_map(struct random *r, struct report *report)
+{
+    struct block *b = report_map(report, "map", some_text(r));
+    map_set_x(report, b, "x", some_text(r), some_text(r), some_style(r))->log = random_index(r, 2);
+    map_set_y(report, b, "y", some_text(r), some_text(r), some_style(r))->log = random_index(r, 2);
+    map_set_worth(report, b, "worth", some_text(r), some_text(r), some_style(r));
+    size_t across = random_index(r, 9), up = random_index(r, 30), n = random_index(r, 70) + 1;
+    double x = some_start(r), y = some_start(r);
+    for (size_t i = 0; i < across; i++, x += fabs(x) * random_uniform(r, 0.1, 2) + 1e-3)
+        map_add_x(report, b, x);
+    for (size_t i = 0; i < up; i++, y += fabs(y) * random_uniform(r, 0.1, 2) + 1e-3)
+        map_add_y(report, b, y);
+    for (size_t i = 0; i < n; i++)
+        map_add_choice(report, b, some_text(r), random_index(r, 4) == 0)->figure = some_text(r);
+    size_t cells = across * up, missing = cells > 0 && random_index(r, 9) == 0;
+    for (size_t i = cells - missing; i-- > 0;)
+        map_add_cell(report, b, random_index(r, n), drawable(some_number(r)));
+    if (random_index(r, 2))
+        map_set_today(b, drawable(some_number(r)), drawable(some_number(r)));
+}
+
+void add_some_spreads(struct random *r, struct report *report)
+{
+    struct block *b = report_spreads(report, "spreads", some_text(r));
+    bool alike = random_index(r, 2);
+    const char *unit = some_text(r);
+    enum number_style style = some_style(r);
+    for (size_t i = random_index(r, 6); i-- > 0;) {
+        struct spread *s = spreads_add(report, b, some_text(r), alike ? unit : some_text(r),
+                                       alike ? style : some_style(r));
+        for (int k = 0; k < SPREAD_PARTS; k++)
+            spread_set(report, s, (enum spread_part)k, drawable(some_number(r)),
+                       random_index(r, 2) ? -1 : fabs(drawable(some_number(r))), some_text(r));
+    }
+}
+
 void fill_at_random(struct random *r, struct report *report)
 {
     for (size_t i = random_index(r, 6) + 1; i-- > 0;) {
-        switch (random_index(r, 6)) {
+        switch (random_index(r, 9)) {
         case 0: report_heading(report, (int)random_index(r, 3) + 1, some_text(r)); break;
         case 1:
             report_note(report, "note", "%s %s\n  %s\n\n%s", some_text(r), some_text(r),
@@ -158,6 +221,9 @@ void fill_at_random(struct random *r, struct report *report)
         case 3: add_some_table(r, report); break;
         case 4: add_some_grid(r, report); break;
         case 5: add_some_curve(r, report); break;
+        case 6: add_some_swings(r, report); break;
+        case 7: add_some_map(r, report); break;
+        case 8: add_some_spreads(r, report); break;
         }
     }
 }

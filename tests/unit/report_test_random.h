@@ -13,6 +13,9 @@ void add_some_table(struct random *r, struct report *report);
 void add_some_pairs(struct random *r, struct report *report);
 void add_some_grid(struct random *r, struct report *report);
 void add_some_curve(struct random *r, struct report *report);
+void add_some_swings(struct random *r, struct report *report);
+void add_some_map(struct random *r, struct report *report);
+void add_some_spreads(struct random *r, struct report *report);
 /* One to six blocks. */
 void fill_at_random(struct random *r, struct report *report);
 
