@@ -84,4 +84,8 @@ double means_error(const struct means *m, node_id n);
 /* The worst method in what the node's mean is made of. */
 enum mean_method means_method(const struct means *m, node_id n);
 
+/* An evaluation of which each value is a mean, in `a`: of all nodes that have one. It is a copy,
+ * not to be evaluated further. A DIAGRAM has for each result the mean over all sets. */
+const struct eval *means_as_values(const struct means *m, struct arena *a);
+
 #endif

@@ -1,0 +1,127 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Moving inputs (moving.h). Owns nothing beyond the arena of the figures. */
+#include "decide/moving.h"
+
+#include <stdlib.h>
+
+struct targets ARRAY_BODY(node_id);
+
+static void add_nets(const struct moving *m, struct targets *to)
+{
+    for (size_t i = 0; i < m->w->alternatives.n; i++) {
+        figure_id net = m->w->alternatives.at[i].net;
+        if (net != FIGURE_NONE)
+            *array_push(m->f->arena, to) = figure_at(m->f, net)->node;
+    }
+}
+
+static int by_name(const void *p, const void *q)
+{
+    const struct turn_input *a = p, *b = q;
+    return text_compare(a->name, b->name);
+}
+
+/* How often a hazard occurs is left out where it is made of what is stated. */
+static void find_inputs(struct moving *m)
+{
+    struct turn_inputs all = {0};
+    turn_inputs_of(m->f, m->w, m->prober, &all);
+    for (size_t i = 0; i < all.n; i++)
+        if (turn_is_stated(m->f, all.at[i].figure))
+            *array_push(m->f->arena, &m->inputs) = all.at[i];
+    if (m->inputs.n > 1)
+        qsort(m->inputs.at, m->inputs.n, sizeof *m->inputs.at, by_name);
+}
+
+void moving_open(struct moving *m, struct figures *f, const struct weighing *w)
+{
+    struct targets targets = {0};
+    *m = (struct moving){.f = f, .w = w};
+    add_nets(m, &targets);
+    /* What is left of other shares must be seen, whether damage follows from it or not. */
+    for (figure_id i = 0; i < f->list.n; i++)
+        if (figure_at(f, i)->property == PROPERTY_SHARE && !figure_at(f, i)->text)
+            *array_push(f->arena, &targets) = figure_at(f, i)->node;
+    m->prober = f->points_only ? prober_new(f->arena, f->eval, targets.n, targets.at)
+                               : prober_of_means(f->arena, f->means, targets.n, targets.at);
+    m->worth = NEW_ARRAY(f->arena, w->alternatives.n, double);
+    m->checked = NEW_ARRAY(f->arena, f->list.n, figure_id);
+    find_inputs(m);
+}
+
+/* Properties that may have any value need no check. */
+static bool is_limited(enum property p)
+{
+    return !property_allows(p, -1);
+}
+
+static void find_checked(struct moving *m)
+{
+    m->n_checked = 0;
+    for (figure_id i = 0; i < m->f->list.n; i++) {
+        const struct figure *g = figure_at(m->f, i);
+        if (is_limited(g->property) && prober_moves(m->prober, g->node) &&
+            graph_at(m->f->graph, g->node)->op != OP_DIAGRAM)
+            m->checked[m->n_checked++] = i;
+    }
+}
+
+void moving_take(struct moving *m, size_t n, const struct turn_input *const *inputs)
+{
+    struct targets nodes = {0};
+    m->n_moved = n;
+    for (size_t i = 0; i < n; i++) {
+        m->moved[i] = inputs[i];
+        for (size_t k = 0; k < inputs[i]->nodes.n; k++)
+            *array_push(m->f->arena, &nodes) = inputs[i]->nodes.at[k].node;
+    }
+    m->x = NEW_ARRAY(m->f->arena, nodes.n, double);
+    prober_open(m->prober, nodes.n, nodes.at);
+    find_checked(m);
+}
+
+bool moving_reaches(const struct moving *m)
+{
+    for (size_t i = 0; i < m->w->alternatives.n; i++) {
+        figure_id net = m->w->alternatives.at[i].net;
+        if (net != FIGURE_NONE && prober_moves(m->prober, figure_at(m->f, net)->node))
+            return true;
+    }
+    return false;
+}
+
+static bool is_possible(const struct moving *m)
+{
+    for (size_t i = 0; i < m->n_checked; i++) {
+        const struct figure *g = figure_at(m->f, m->checked[i]);
+        if (!property_allows(g->property, prober_value(m->prober, g->node)))
+            return false;
+    }
+    return true;
+}
+
+bool moving_to(struct moving *m, const double *at)
+{
+    size_t node = 0;
+    for (size_t i = 0; i < m->n_moved; i++)
+        for (size_t k = 0; k < m->moved[i]->nodes.n; k++)
+            m->x[node++] = m->moved[i]->nodes.at[k].times * at[i];
+    if (!prober_at(m->prober, m->x) || !is_possible(m))
+        return false;
+    for (size_t i = 0; i < m->w->alternatives.n; i++) {
+        figure_id net = m->w->alternatives.at[i].net;
+        m->worth[i] = net == FIGURE_NONE ? 0 : prober_value(m->prober, figure_at(m->f, net)->node);
+    }
+    return true;
+}
+
+size_t moving_best(const struct moving *m, const double *worth)
+{
+    const struct alternative *all = m->w->alternatives.at;
+    size_t best = 0;
+    for (size_t i = 1; i < m->w->alternatives.n; i++)
+        if (worth[i] > worth[best] ||
+            (worth[i] == worth[best] && text_compare(all[i].name, all[best].name) < 0))
+            best = i;
+    return best;
+}

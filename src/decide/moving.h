@@ -1,0 +1,41 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What every alternative would be worth if stated quantities had other values.
+ *
+ * Private to src/decide. Worth is the net present value; doing nothing is worth 0. By means over
+ * what is unknown (prober_of_means), with what is moved certain; where the figures are values at
+ * the means (figures.points_only), by those. */
+#ifndef DECIDE_MOVING_H
+#define DECIDE_MOVING_H
+
+#include "decide/turn_inputs.h"
+
+struct moving {
+    struct figures *f;
+    const struct weighing *w;
+    struct prober *prober;
+    struct turn_inputs inputs; /* only those that documents state, by name */
+    double *worth;             /* by alternative of the weighing, at the last point */
+    double *x;                 /* of the nodes that are moved */
+    size_t n_moved;
+    const struct turn_input *moved[2];
+    figure_id *checked; /* figures that move and must stay possible */
+    size_t n_checked;
+};
+
+/* weigh_rank has been called. Lives in the arena of the figures. */
+void moving_open(struct moving *m, struct figures *f, const struct weighing *w);
+
+/* What will be moved: one input, or two. */
+void moving_take(struct moving *m, size_t n, const struct turn_input *const *inputs);
+
+/* Does what will be moved reach a net present value at all, and not only the rest of a share? */
+bool moving_reaches(const struct moving *m);
+
+/* Moves them; false where something is not finite, or a probability is none, or what cannot be
+ * negative is. */
+bool moving_to(struct moving *m, const double *at);
+
+/* The best alternative at these worths; ties by name. */
+size_t moving_best(const struct moving *m, const double *worth);
+
+#endif

@@ -1,0 +1,167 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Adjustments (adjust.h). Owns a copy of the means, behind whose results there is room for those
+ * of one DIAGRAM. */
+#include "eval/adjust.h"
+
+#include "eval/state.h"
+
+#include <math.h>
+#include <string.h>
+
+/* Of one node: factor[first + k] of result k, or where the rule gives 0, what is added. */
+struct adjustment {
+    size_t first, n;
+    bool is_open;
+};
+
+struct adjustments {
+    struct arena *arena;
+    const struct means *means;
+    struct eval own;       /* values are means; results are those of one DIAGRAM */
+    const struct eval *at; /* the same with all results */
+    uint32_t *of_node;     /* number of its adjustment from 1 on; 0: none yet */
+    ARRAY(struct adjustment) list;
+    ARRAY(double) factor, added;
+    ARRAY(uint32_t) certain; /* inputs that are moved */
+    ARRAY(uint32_t) open;    /* adjustments of the steps */
+};
+
+struct adjustments *adjustments_new(struct arena *a, const struct means *m,
+                                    const struct eval *at_means)
+{
+    struct adjustments *x = NEW(a, struct adjustments);
+    *x = (struct adjustments){.arena = a, .means = m, .at = at_means};
+    x->own = *at_means;
+    x->own.results.at = NULL;
+    x->own.results.n = x->own.results.cap = 0;
+    x->of_node = NEW_ARRAY(a, at_means->done, uint32_t);
+    return x;
+}
+
+bool adjustments_none(const struct adjustments *x)
+{
+    return x->open.n == 0;
+}
+
+/* ---- which nodes ---- */
+
+/* Is the mean of sums what the rule makes of means, whatever these are made of? */
+static bool is_sum(enum graph_op op)
+{
+    switch (op) {
+    case OP_ADD:
+    case OP_SUBTRACT:
+    case OP_NEGATE:
+    case OP_COMPLEMENT:
+    case OP_SUM:
+    case OP_HELD:
+    case OP_YEARS:
+    case OP_PICK: return true;
+    default: return false;
+    }
+}
+
+/* Is it a product of several means that were sampled, and so of numbers that are not independent? */
+static bool is_of_samples(const struct adjustments *x, node_id n)
+{
+    const struct graph *g = x->own.g;
+    size_t sampled = 0;
+    if (means_method(x->means, n) != MEAN_SAMPLE || is_sum(graph_at(g, n)->op))
+        return false;
+    for (uint32_t i = 0; i < graph_at(g, n)->n; i++)
+        sampled += means_method(x->means, graph_args(g, n)[i]) == MEAN_SAMPLE;
+    return sampled > 1;
+}
+
+static bool is_certain(const struct adjustments *x, uint32_t input)
+{
+    for (size_t i = 0; i < x->certain.n; i++)
+        if (x->certain.at[i] == input)
+            return true;
+    return false;
+}
+
+/* Does the node bend in something that is not moved? */
+static bool bends_still(const struct adjustments *x, node_id n)
+{
+    size_t n_curved;
+    const uint32_t *curved = graph_curved(x->own.g, n, &n_curved);
+    if (!graph_bends(x->own.g, n))
+        return false;
+    for (size_t i = 0; i < n_curved; i++)
+        if (!is_certain(x, curved[i]))
+            return true;
+    return false;
+}
+
+/* ---- working out ---- */
+
+static void add_factor(struct adjustments *x, double mean, double rule)
+{
+    double factor = mean / rule;
+    bool fits = rule != 0 && isfinite(factor);
+    *array_push(x->arena, &x->factor) = fits ? factor : 1;
+    *array_push(x->arena, &x->added) = fits ? 0 : mean - rule;
+}
+
+static void work_out(struct adjustments *x, node_id n)
+{
+    struct eval *v = &x->own;
+    bool is_diagram = graph_at(v->g, n)->op == OP_DIAGRAM;
+    size_t count = is_diagram ? eval_results(v, n) : 1;
+    *array_push(x->arena, &x->list) = (struct adjustment){.first = x->factor.n, .n = count};
+    x->of_node[n] = (uint32_t)x->list.n;
+    if (!is_diagram) {
+        /* A PICK is a sum, and never adjusted: nothing here reads results. */
+        add_factor(x, v->value.at[n], eval_node(v, n, 0));
+        return;
+    }
+    v->results.n = 0;
+    array_reserve(x->arena, &v->results, count);
+    eval_node(v, n, 0);
+    for (size_t k = 0; k < count; k++)
+        add_factor(x, x->at->results.at[(size_t)x->at->value.at[n] + k], v->results.at[k]);
+}
+
+/* ---- opening ---- */
+
+static void find_certain(struct adjustments *x, size_t n, const node_id *moved)
+{
+    x->certain.n = 0;
+    for (size_t i = 0; i < n; i++) {
+        const struct graph_node *node = graph_at(x->own.g, moved[i]);
+        if (node->op == OP_INPUT && !is_certain(x, node->extra))
+            *array_push(x->arena, &x->certain) = node->extra;
+    }
+}
+
+void adjustments_open(struct adjustments *x, size_t n_moved, const node_id *moved, size_t n_steps,
+                      const node_id *steps)
+{
+    for (size_t i = 0; i < x->open.n; i++)
+        x->list.at[x->open.at[i]].is_open = false;
+    x->open.n = 0;
+    find_certain(x, n_moved, moved);
+    for (size_t i = 0; i < n_steps; i++) {
+        if (!bends_still(x, steps[i]) && !is_of_samples(x, steps[i]))
+            continue;
+        if (!x->of_node[steps[i]])
+            work_out(x, steps[i]);
+        uint32_t number = x->of_node[steps[i]] - 1;
+        x->list.at[number].is_open = true;
+        *array_push(x->arena, &x->open) = number;
+    }
+}
+
+/* Results of a DIAGRAM are probabilities and stay so. */
+void adjust(const struct adjustments *x, node_id n, double *results)
+{
+    const struct adjustment *a = x->of_node[n] ? &x->list.at[x->of_node[n] - 1] : NULL;
+    if (!a || !a->is_open)
+        return;
+    bool is_diagram = graph_at(x->own.g, n)->op == OP_DIAGRAM;
+    for (size_t k = 0; k < a->n; k++) {
+        double y = results[k] * x->factor.at[a->first + k] + x->added.at[a->first + k];
+        results[k] = is_diagram ? fmin(fmax(y, 0), 1) : y;
+    }
+}
