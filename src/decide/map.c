@@ -179,8 +179,8 @@ static struct map_point take_point(struct mapping *m, double x, double y)
     return point_of(m, worth);
 }
 
-/* Between the two ends of a row, where every worth is a line in x, and so is whatever must stay
- * possible. */
+/* Between the two ends of a run, where every worth is a line in what moves, and so is whatever must
+ * stay possible. */
 static struct map_point between(const struct mapping *m, const struct map_point *first,
                                 const struct map_point *last, double part)
 {
@@ -190,25 +190,49 @@ static struct map_point between(const struct mapping *m, const struct map_point 
     return point_of(m, worth);
 }
 
-static void take_row(struct mapping *m, size_t row, bool is_line)
+/* Which of the points lie in a row (AXIS_X moves) or a column (AXIS_Y moves) of that number. */
+enum axis { AXIS_X, AXIS_Y };
+
+static struct map_point *point_at(const struct mapping *m, enum axis moves, size_t number, size_t i)
 {
-    const struct map_axis *x = &m->out->x;
-    struct map_point *p = m->out->points + row * x->n;
-    double y = m->out->y.at[row], first = x->at[0], last = x->at[x->n - 1];
-    p[0] = take_point(m, first, y);
-    p[x->n - 1] = take_point(m, last, y);
-    bool ends = p[0].best != MAP_NONE && p[x->n - 1].best != MAP_NONE;
-    for (size_t i = 1; i + 1 < x->n; i++)
-        p[i] = is_line && ends
-                   ? between(m, &p[0], &p[x->n - 1], (x->at[i] - first) / (last - first))
-                   : take_point(m, x->at[i], y);
+    size_t columns = m->out->x.n;
+    return &m->out->points[moves == AXIS_X ? number * columns + i : i * columns + number];
+}
+
+static struct map_point take(struct mapping *m, enum axis moves, size_t number, size_t i)
+{
+    const struct map *out = m->out;
+    return moves == AXIS_X ? take_point(m, out->x.at[i], out->y.at[number])
+                           : take_point(m, out->x.at[number], out->y.at[i]);
+}
+
+static void take_run(struct mapping *m, enum axis moves, size_t number, bool is_line)
+{
+    const struct map_axis *a = moves == AXIS_X ? &m->out->x : &m->out->y;
+    struct map_point *first = point_at(m, moves, number, 0);
+    struct map_point *last = point_at(m, moves, number, a->n - 1);
+    *first = take(m, moves, number, 0);
+    *last = take(m, moves, number, a->n - 1);
+    bool ends = first->best != MAP_NONE && last->best != MAP_NONE;
+    for (size_t i = 1; i + 1 < a->n; i++) {
+        double part = (a->at[i] - a->at[0]) / (a->at[a->n - 1] - a->at[0]);
+        *point_at(m, moves, number, i) =
+            is_line && ends ? between(m, first, last, part) : take(m, moves, number, i);
+    }
+}
+
+static bool is_line_in(struct mapping *m, enum axis moves)
+{
+    moving_take(&m->moving, 1, &m->input[moves]);
+    return prober_is_linear(m->moving.prober);
 }
 
 static ohmen_status take_points(struct mapping *m, ohmen_error *e)
 {
     struct map *out = m->out;
-    moving_take(&m->moving, 1, &m->input[0]);
-    bool is_line = prober_is_linear(m->moving.prober);
+    bool x_line = is_line_in(m, AXIS_X), y_line = is_line_in(m, AXIS_Y);
+    enum axis moves = x_line || !y_line ? AXIS_X : AXIS_Y;
+    size_t runs = moves == AXIS_X ? out->y.n : out->x.n;
     moving_take(&m->moving, 2, m->input);
     out->is_exact = prober_is_exact(m->moving.prober);
     out->today = take_point(m, out->x.now, out->y.now);
@@ -216,8 +240,8 @@ static ohmen_status take_points(struct mapping *m, ohmen_error *e)
         return error_set(e, OHMEN_COMPUTE, "a map of \"%s\" by %s and %s cannot be computed",
                          m->moving.w->id, out->x.name, out->y.name);
     out->points = NEW_ARRAY(m->moving.f->arena, out->x.n * out->y.n, struct map_point);
-    for (size_t row = 0; row < out->y.n; row++)
-        take_row(m, row, is_line);
+    for (size_t i = 0; i < runs; i++)
+        take_run(m, moves, i, x_line || y_line);
     return OHMEN_OK;
 }
 

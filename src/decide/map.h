@@ -9,7 +9,8 @@
  *
  * Worth at a point: both inputs certain there, everything else as for swings (decide/swing.h), of
  * which map.is_exact is told in the same way. Where the structure makes every worth a straight line
- * in x (prober_is_linear), the points of a row come from that line through its ends. */
+ * in x (prober_is_linear), the points of a row come from that line through its ends; where only in
+ * y, so do those of a column. */
 #ifndef DECIDE_MAP_H
 #define DECIDE_MAP_H
 
