@@ -21,12 +21,6 @@ struct mapping {
 
 /* --- which inputs --- */
 
-static bool reaches_any(struct moving *m, const struct turn_input *in)
-{
-    moving_take(m, 1, &in);
-    return moving_reaches(m);
-}
-
 static ohmen_status find_named(struct mapping *m, const char *name, const struct turn_input **out,
                                ohmen_error *e)
 {
@@ -34,7 +28,7 @@ static ohmen_status find_named(struct mapping *m, const char *name, const struct
     nearest_init(&near, name);
     for (size_t i = 0; i < m->moving.inputs.n; i++) {
         const struct turn_input *in = &m->moving.inputs.at[i];
-        if (!reaches_any(&m->moving, in))
+        if (!moving_reaches(&m->moving, in))
             continue;
         if (text_equal(in->name, name)) {
             *out = in;
@@ -223,8 +217,7 @@ static void take_run(struct mapping *m, enum axis moves, size_t number, bool is_
 
 static bool is_line_in(struct mapping *m, enum axis moves)
 {
-    moving_take(&m->moving, 1, &m->input[moves]);
-    return prober_is_linear(m->moving.prober);
+    return moving_reaches(&m->moving, m->input[moves]) && prober_is_linear(m->moving.prober);
 }
 
 static ohmen_status take_points(struct mapping *m, ohmen_error *e)

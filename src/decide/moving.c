@@ -4,6 +4,13 @@
 
 #include <stdlib.h>
 
+#include "math/elementary.h"
+
+/* Of the trapezoidal rule in z, on each side. */
+enum { STEPS = 3 };
+static const double STEP = 1.5;
+static const double SQRT_HALF = 0.70710678118654752440;
+
 struct targets ARRAY_BODY(node_id);
 
 static void add_nets(const struct moving *m, struct targets *to)
@@ -45,6 +52,7 @@ void moving_open(struct moving *m, struct figures *f, const struct weighing *w)
     m->prober = f->points_only ? prober_new(f->arena, f->eval, targets.n, targets.at)
                                : prober_of_means(f->arena, f->means, targets.n, targets.at);
     m->worth = NEW_ARRAY(f->arena, w->alternatives.n, double);
+    m->missing = NEW_ARRAY(f->arena, w->alternatives.n, double);
     m->checked = NEW_ARRAY(f->arena, f->list.n, figure_id);
     find_inputs(m);
 }
@@ -66,7 +74,7 @@ static void find_checked(struct moving *m)
     }
 }
 
-void moving_take(struct moving *m, size_t n, const struct turn_input *const *inputs)
+static void open_for(struct moving *m, size_t n, const struct turn_input *const *inputs)
 {
     struct targets nodes = {0};
     m->n_moved = n;
@@ -78,10 +86,13 @@ void moving_take(struct moving *m, size_t n, const struct turn_input *const *inp
     m->x = NEW_ARRAY(m->f->arena, nodes.n, double);
     prober_open(m->prober, nodes.n, nodes.at);
     find_checked(m);
+    for (size_t i = 0; i < m->w->alternatives.n; i++)
+        m->missing[i] = 0;
 }
 
-bool moving_reaches(const struct moving *m)
+bool moving_reaches(struct moving *m, const struct turn_input *in)
 {
+    open_for(m, 1, &in);
     for (size_t i = 0; i < m->w->alternatives.n; i++) {
         figure_id net = m->w->alternatives.at[i].net;
         if (net != FIGURE_NONE && prober_moves(m->prober, figure_at(m->f, net)->node))
@@ -113,6 +124,83 @@ bool moving_to(struct moving *m, const double *at)
         m->worth[i] = net == FIGURE_NONE ? 0 : prober_value(m->prober, figure_at(m->f, net)->node);
     }
     return true;
+}
+
+/* --- what is missing --- */
+
+struct weighted {
+    double at, weight;
+};
+struct spread_points ARRAY_BODY(struct weighted);
+
+static void add_normal_points(const struct moving *m, const struct quantity *q,
+                              struct spread_points *out)
+{
+    for (int i = -STEPS; i <= STEPS; i++) {
+        double z = i * STEP, x;
+        ohmen_error unused = OHMEN_ERROR_INIT;
+        double p = math_erfc(-z * SQRT_HALF) / 2, rest = math_erfc(z * SQRT_HALF) / 2;
+        if (quantity_tail(q, p, rest, &x, &unused) == OHMEN_OK)
+            *array_push(m->f->arena, out) = (struct weighted){x, math_exp(-z * z / 2)};
+    }
+}
+
+/* Where an input may stand; at its mean alone where it is certain, or all is a line in it. */
+static void find_spread(struct moving *m, const struct turn_input *in, struct spread_points *out)
+{
+    const struct quantity *q = turn_unknown(m->f, in->figure);
+    open_for(m, 1, &in);
+    if (!q || prober_is_linear(m->prober))
+        *array_push(m->f->arena, out) = (struct weighted){in->now, 1};
+    else if (q->shape == SHAPE_DISCRETE)
+        for (size_t i = 0; i < q->n; i++)
+            *array_push(m->f->arena, out) =
+                (struct weighted){q->values[i] * q->times, q->probabilities[i]};
+    else
+        add_normal_points(m, q, out);
+}
+
+/* Adds up what the prober gives, over all points of one or two inputs; the weight of those that
+ * are possible. */
+static double add_up(struct moving *m, const struct spread_points *spread, double *sum)
+{
+    static const struct weighted nowhere = {0, 1};
+    size_t n = m->n_moved > 1 ? spread[1].n : 1;
+    double weight = 0;
+    for (size_t i = 0; i < spread[0].n; i++)
+        for (size_t k = 0; k < n; k++) {
+            struct weighted x = spread[0].at[i], y = m->n_moved > 1 ? spread[1].at[k] : nowhere;
+            if (!moving_to(m, (double[]){x.at, y.at}))
+                continue;
+            weight += x.weight * y.weight;
+            for (size_t j = 0; j < m->w->alternatives.n; j++)
+                sum[j] += x.weight * y.weight * m->worth[j];
+        }
+    return weight;
+}
+
+static void find_missing(struct moving *m, const struct spread_points *spread)
+{
+    double *sum = NEW_ARRAY(m->f->arena, m->w->alternatives.n, double);
+    double weight = add_up(m, spread, sum);
+    for (size_t i = 0; i < m->w->alternatives.n && weight > 0; i++) {
+        figure_id net = m->w->alternatives.at[i].net;
+        if (net != FIGURE_NONE)
+            m->missing[i] = figure_value(m->f, net) - sum[i] / weight;
+    }
+}
+
+void moving_take(struct moving *m, size_t n, const struct turn_input *const *inputs)
+{
+    struct spread_points spread[2] = {0};
+    const struct turn_input *all[] = {inputs[0], n > 1 ? inputs[1] : NULL};
+    open_for(m, n, all);
+    if (prober_is_exact(m->prober))
+        return;
+    for (size_t i = 0; i < n; i++)
+        find_spread(m, all[i], &spread[i]);
+    open_for(m, n, all);
+    find_missing(m, spread);
 }
 
 size_t moving_best(const struct moving *m, const double *worth)

@@ -58,11 +58,9 @@ static ohmen_status add_swing(struct swinging *x, const struct turn_input *in, o
     struct arena *a = x->moving.f->arena;
     const struct quantity *q = turn_unknown(x->moving.f, in->figure);
     struct swing s = {.input = in->figure, .name = in->name, .now = in->now};
-    if (!q)
+    if (!q || !moving_reaches(&x->moving, in))
         return OHMEN_OK;
     moving_take(&x->moving, 1, &in);
-    if (!moving_reaches(&x->moving))
-        return OHMEN_OK;
     ohmen_status status = find_ends(q, &s, e);
     if (status != OHMEN_OK)
         return status;

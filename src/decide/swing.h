@@ -9,10 +9,11 @@
  * Ends: the input at its 5 % point (low) and at its 95 % point (high), as quantity_quantile gives
  * them, discrete ones too; everything else is unknown as it was, and the worth is the mean over
  * that, as it would be if the document stated the end as a certain value. This is exact (apart
- * from rounding) where the worth bends in nothing that is still unknown: where it is linear in
- * every other input, or what is curved in others does not depend on this one. Otherwise the
- * quotient of the mean of each such part to its value at the means is taken to stay as it is now
- * (prober_of_means), and the swing is approximate: swing.is_exact is false.
+ * from rounding) where the worth is linear in every other input; where what is curved in others
+ * does not depend on this one; and where it is a function of this one times one of the others.
+ * Otherwise what is curved in others is brought in as it is now (prober_of_means), such that the
+ * mean over what is not known of the input stays the worth of today, and the swing is approximate:
+ * swing.is_exact is false.
  *
  * Width: how far the swing moves the difference of the two best alternatives of today, with doing
  * nothing, which is worth 0, among them. */

@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* What brings the rules of curved nodes to their means, inside src/eval (see probe.h).
  *
- * A node of which the mean is not what its rule makes of the means of its arguments is adjusted by
- * their quotient where nothing is moved, unless all that it bends in is moved, and so certain.
+ * A node of which the mean is not what its rule makes of the means of its arguments, also with what
+ * is moved certain, is adjusted by their quotient where nothing is moved. One that bends in what is
+ * moved as well is left as its rule makes it, since that quotient holds the spread of what is moved.
  * Invariant: an adjustment is worked out once, when a step first needs it, and does not depend on
  * what is moved. */
 #ifndef EVAL_ADJUST_H
@@ -19,8 +20,8 @@ struct adjustments *adjustments_new(struct arena *a, const struct means *m,
 void adjustments_open(struct adjustments *x, size_t n_moved, const node_id *moved, size_t n_steps,
                       const node_id *steps);
 
-/* Does no step have one? */
-bool adjustments_none(const struct adjustments *x);
+/* Are all steps the means that they stand for, apart from rounding? */
+bool adjustments_are_exact(const struct adjustments *x);
 
 /* Adjusts what the rule of a step made: its value; all results of a DIAGRAM. */
 void adjust(const struct adjustments *x, node_id n, double *results);

@@ -258,7 +258,7 @@ bool prober_is_linear(const struct prober *p)
 
 bool prober_is_exact(const struct prober *p)
 {
-    return !p->adjustments || adjustments_none(p->adjustments);
+    return !p->adjustments || adjustments_are_exact(p->adjustments);
 }
 
 /* ---- diagrams over windows ---- */
