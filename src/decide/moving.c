@@ -121,7 +121,9 @@ bool moving_to(struct moving *m, const double *at)
         return false;
     for (size_t i = 0; i < m->w->alternatives.n; i++) {
         figure_id net = m->w->alternatives.at[i].net;
-        m->worth[i] = net == FIGURE_NONE ? 0 : prober_value(m->prober, figure_at(m->f, net)->node);
+        m->worth[i] = m->missing[i];
+        if (net != FIGURE_NONE)
+            m->worth[i] += prober_value(m->prober, figure_at(m->f, net)->node);
     }
     return true;
 }
