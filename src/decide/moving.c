@@ -8,7 +8,7 @@
 
 /* Of the trapezoidal rule in z, on each side. */
 enum { STEPS = 3 };
-static const double STEP = 1.5;
+static const double STEP = 1.25;
 static const double SQRT_HALF = 0.70710678118654752440;
 
 struct targets ARRAY_BODY(node_id);
