@@ -75,7 +75,7 @@ static ohmen_status choose(struct mapping *m, ohmen_error *e)
     ohmen_status status = swings_find(m->moving.f, m->moving.w, &swings, e);
     if (status != OHMEN_OK)
         return status;
-    for (size_t i = 0; i < swings.list.n && is_open(m); i++)
+    for (size_t i = 0; i < swings.list.n && swings.list.at[i].width > 0 && is_open(m); i++)
         offer(m, swings.list.at[i].input);
     if (is_open(m))
         leans_find(m->moving.f, m->moving.w, &leans);
