@@ -8,7 +8,8 @@
 #include <math.h>
 #include <string.h>
 
-/* Of one node: factor[first + k] of result k, or where the rule gives 0, what is added. */
+/* Of one node: result k times factor[first + k], and added[first + k] to that. A PICK is a sum and
+ * never adjusted, so that no rule here reads results. */
 struct adjustment {
     size_t first, n;
     bool is_open;
@@ -209,23 +210,37 @@ static void add_factor(struct adjustments *x, double mean, double rule)
     *array_push(x->arena, &x->added) = fits ? 0 : mean - rule;
 }
 
-static void work_out(struct adjustments *x, node_id n)
+static void add_difference(struct adjustments *x, double mean, double rule)
+{
+    *array_push(x->arena, &x->factor) = 1;
+    *array_push(x->arena, &x->added) = mean - rule;
+}
+
+static void work_out_diagram(struct adjustments *x, node_id n)
 {
     struct eval *v = &x->own;
-    bool is_diagram = graph_at(v->g, n)->op == OP_DIAGRAM;
-    size_t count = is_diagram ? eval_results(v, n) : 1;
-    *array_push(x->arena, &x->list) = (struct adjustment){.first = x->factor.n, .n = count};
-    x->of_node[n] = (uint32_t)x->list.n;
-    if (!is_diagram) {
-        /* A PICK is a sum, and never adjusted: nothing here reads results. */
-        add_factor(x, v->value.at[n], eval_node(v, n, 0));
-        return;
-    }
+    const double *mean = x->at->results.at + (size_t)x->at->value.at[n];
+    size_t count = eval_results(v, n);
     v->results.n = 0;
     array_reserve(x->arena, &v->results, count);
     eval_node(v, n, 0);
     for (size_t k = 0; k < count; k++)
-        add_factor(x, x->at->results.at[(size_t)x->at->value.at[n] + k], v->results.at[k]);
+        add_difference(x, mean[k], v->results.at[k]);
+}
+
+static void work_out(struct adjustments *x, node_id n)
+{
+    struct eval *v = &x->own;
+    enum graph_op op = graph_at(v->g, n)->op;
+    size_t count = op == OP_DIAGRAM ? eval_results(v, n) : 1;
+    *array_push(x->arena, &x->list) = (struct adjustment){.first = x->factor.n, .n = count};
+    x->of_node[n] = (uint32_t)x->list.n;
+    if (op == OP_DIAGRAM)
+        work_out_diagram(x, n);
+    else if (op == OP_EITHER)
+        add_difference(x, v->value.at[n], eval_node(v, n, 0));
+    else
+        add_factor(x, v->value.at[n], eval_node(v, n, 0));
 }
 
 /* ---- opening ---- */

@@ -2,8 +2,10 @@
 /* What brings the rules of curved nodes to their means, inside src/eval (see probe.h).
  *
  * A node of which the mean is not what its rule makes of the means of its arguments, also with what
- * is moved certain, is adjusted by their quotient where nothing is moved. One that bends in what is
- * moved as well is left as its rule makes it, since that quotient holds the spread of what is moved.
+ * is moved certain, is adjusted by their quotient where nothing is moved; EITHER and DIAGRAM by
+ * their difference, since what shares nothing with others mostly stands beside them (A or (B and
+ * C)). One that bends in what is moved as well is left as its rule makes it, since either holds the
+ * spread of what is moved.
  * Invariant: an adjustment is worked out once, when a step first needs it, and does not depend on
  * what is moved. */
 #ifndef EVAL_ADJUST_H

@@ -25,8 +25,8 @@ struct prober *prober_new(struct arena *a, const struct eval *v, size_t n_target
  * one (graph_bends; a product of several sampled means, too) that depends on what is moved has its
  * rule at those means
  * - times what its mean is to that where nothing is moved (plus the difference, where it is 0
- *   there), if it does not bend in what is moved. That is exact where the node is a function of
- *   what is moved times one of all else, otherwise approximate;
+ *   there, and for EITHER and DIAGRAM), if it does not bend in what is moved. That is exact where
+ *   the node is a function of what is moved times one of all else, otherwise approximate;
  * - as it is, if it bends in what is moved, too: approximate. */
 struct prober *prober_of_means(struct arena *a, const struct means *m, size_t n_targets,
                                const node_id *targets);

@@ -382,6 +382,52 @@ START_TEST(registers_that_state_an_end)
 }
 END_TEST
 
+/* Main and backup are of one type, which is certain then; the diagram bends in it, but is linear in
+ * the transformer and in the breaker, for which it is approximate. */
+static const struct restated_input shared_inputs[] = {
+    {"T.undetected", "{median: 0.02 per a, error-factor: 3}", "per a"},
+    {"Q.fails", "{a: 2, b: 40}", ""},
+    {"CT.fails", "{a: 2, b: 90}", ""},
+    {"f.rate", "90 % within 0.1 per a .. 0.6 per a", "per a"},
+};
+static const struct restated shared = {
+    SETTINGS
+    "rates: {f: {name: F, per: a, is: $3}}\n"
+    "types: {T: {name: T, kind: relay, undetected: $0}}\n"
+    "elements:\n"
+    "  R1: {type: T, test: {every: 4 a, last: 2025-06-01}}\n"
+    "  R2: {type: T, test: {every: 3 a, last: 2024-02-01}}\n"
+    "  Q: {kind: breaker, per-demand: $1}\n"
+    "  CT: {kind: ct, per-demand: $2}\n"
+    "schemes: {MAIN: {name: M, works: {all: [CT, R1, Q]}}, BACK: {name: B, works: {all: [CT, "
+    "R2]}}}\n"
+    "hazards:\n"
+    "  H: {name: H, frequency: f, response: {p: {cleared-by: MAIN, in: 0.1 s, outcome: none}, q: "
+    "{cleared-by: BACK, in: 0.3 s, outcome: slow}, never: {outcome: lost}}, outcomes: {lost: "
+    "{name: Lost, damage: {loss: {category: c, is: 400 kEUR}}}, slow: {name: Slow, damage: {loss: "
+    "{category: c, is: 20 kEUR}}}}}\n"
+    "options:\n"
+    "  A: {name: A, invest: 30 kEUR, change: {hazards: {H: {frequency: 0.2 * was}}}}\n"
+    "  B: {name: B, invest: 2 kEUR, change: {types: {T: {undetected: 0.3 * was}}}}\n"
+    "decisions: {D: {question: What?, options: [A, B]}}\n",
+    4, shared_inputs};
+
+START_TEST(diagrams_that_share)
+{
+    struct loaded l;
+    struct weighing *w;
+    struct swings s;
+    find(&l, &shared, &w, &s);
+    ck_assert_uint_eq(s.list.n, shared.n);
+    for (size_t i = 0; i < s.list.n; i++) {
+        const struct swing *x = &s.list.at[i];
+        bool bends = text_equal(x->name, "Q.fails") || text_equal(x->name, "CT.fails");
+        ck_assert_msg(x->is_exact == !bends, "%s", x->name);
+        weigh_anew(&shared, w, x);
+    }
+}
+END_TEST
+
 START_TEST(values_by_name)
 {
     struct loaded l;
@@ -528,6 +574,7 @@ int main(void)
     tcase_add_test(t, nothing_swings);
     tcase_add_test(t, ends_that_are_not_possible);
     tcase_add_test(t, registers_that_state_an_end);
+    tcase_add_test(t, diagrams_that_share);
     tcase_add_test(t, values_by_name);
     tcase_add_test(t, random_registers);
     suite_add_tcase(s, t);
