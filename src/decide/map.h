@@ -60,8 +60,8 @@ struct map {
 /* weigh_rank has been called. Inputs by name of their figures; where one or both are NULL: those
  * with the widest swings, and behind these, where too few swing, those on which the decision leans
  * most. columns, rows >= 2. OHMEN_UNKNOWN with the nearest name for one that moves nothing here or
- * stands twice, OHMEN_COMPUTE where there are no two inputs, or a percentile or today's point cannot
- * be computed. Lives in the arena of the figures. */
+ * stands twice, OHMEN_COMPUTE where there are no two inputs, or a percentile or today's point
+ * cannot be computed. Lives in the arena of the figures. */
 ohmen_status map_find(struct figures *f, const struct weighing *w, const char *x, const char *y,
                       size_t columns, size_t rows, struct map *out, ohmen_error *e);
 

@@ -9,7 +9,7 @@
  * inputs stand, and so that the mean over what is not known of them is the worth of today. That
  * mean is taken by the atoms of a discrete input, for any other one by the trapezoidal rule in z,
  * x = quantile(normal(z)), from -3.75 to 3.75 in steps of 1.25 (computed: the variance of a uniform
- * one comes out 2 % too small, the mean of lognormal ones right within 1e-4 up to an error factor of 3).
+ * one comes out 2 % too small, the mean of a lognormal one with error factor 3 right within 1e-4).
  */
 #ifndef DECIDE_MOVING_H
 #define DECIDE_MOVING_H
@@ -36,8 +36,8 @@ void moving_open(struct moving *m, struct figures *f, const struct weighing *w);
 /* What will be moved: one input, or two. */
 void moving_take(struct moving *m, size_t n, const struct turn_input *const *inputs);
 
-/* Does an input reach a net present value at all, and not only the rest of a share? Nothing has been
- * taken then. */
+/* Does an input reach a net present value at all, and not only the rest of a share? Nothing has
+ * been taken then. */
 bool moving_reaches(struct moving *m, const struct turn_input *in);
 
 /* Moves them; false where something is not finite, or a probability is none, or what cannot be

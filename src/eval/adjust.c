@@ -72,7 +72,7 @@ static bool is_sum(enum graph_op op)
     }
 }
 
-/* Is it a product of several means that were sampled, and so of numbers that are not independent? */
+/* Is it a product of several means that were sampled, and so not independent of each other? */
 static bool is_of_samples(const struct adjustments *x, node_id n)
 {
     const struct graph *g = x->own.g;

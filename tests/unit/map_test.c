@@ -140,9 +140,9 @@ static const struct restated axes = {
              "decisions: {D: {question: What?, options: [A]}}\n",
     4, axis_inputs};
 
-/* A ratio of 10 or more is spaced in logs: 1 and 99 % of a lognormal quantity, of which log(x / median)
- * is log(10) x 2.3263478740408408 / 1.6448536269514722. Both points of a discrete quantity may be
- * one, and a probability ends at 1. */
+/* A ratio of 10 or more is spaced in logs: 1 and 99 % of a lognormal quantity, of which
+ * log(x / median) is log(10) x 2.3263478740408408 / 1.6448536269514722. Both points of a discrete
+ * quantity may be one, and a probability ends at 1. */
 START_TEST(axes_of_all_sorts)
 {
     struct loaded l;

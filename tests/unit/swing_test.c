@@ -159,8 +159,8 @@ START_TEST(curved_in_another)
 END_TEST
 
 /* Damage 1000 u v^2 (v + u): bends in u and in v, and so for v what u adds, E[v^2] / 3 = 28/9, is
- * taken to be the same at all v. The mean over v is taken of 2 v^2 (v + 2), to which the variance of v
- * adds 22/3: within 2 % of that. */
+ * taken to be the same at all v. The mean over v is taken of 2 v^2 (v + 2), to which the variance
+ * of v adds 22/3: within 2 % of that. */
 START_TEST(curved_in_both)
 {
     static const struct restated_input inputs[] = {
