@@ -29,20 +29,13 @@ static int by_movement(const void *p, const void *q)
     return text_compare(a->name, b->name);
 }
 
-/* How often a hazard occurs is made of what is stated, which is listed itself. */
-static bool is_stated(struct figures *f, figure_id id)
-{
-    struct figure_ids made_of = {0};
-    figure_inputs(f, f->arena, id, &made_of);
-    return made_of.n == 0;
-}
-
 static void add_lean(struct figures *f, const struct weighing *w, const struct alternative *of,
                      const struct turn_input *in, const double *derivative, struct leans *out)
 {
     node_id root = figure_at(f, of->net)->node;
     double slope = 0;
-    if (!is_stated(f, in->figure))
+    /* How often a hazard occurs is made of what is stated, which is listed itself. */
+    if (!turn_is_stated(f, in->figure))
         return;
     for (size_t i = 0; i < in->nodes.n; i++)
         if (in->nodes.at[i].node <= root)
@@ -50,8 +43,7 @@ static void add_lean(struct figures *f, const struct weighing *w, const struct a
     if (slope == 0)
         return;
     *array_push(f->arena, out) = (struct lean){
-        .name = arena_printf(f->arena, "%s" MARK "%s].%s", w->id,
-                             figure_name(f, f->arena, in->figure), of->name),
+        .name = arena_printf(f->arena, "%s" MARK "%s].%s", w->id, in->name, of->name),
         .input = in->figure,
         .of = of,
         .now = in->now,
@@ -87,12 +79,9 @@ ohmen_status lean_find(struct figures *f, const char *name, struct lean *out, oh
     struct nearest near;
     struct leans all = {0};
     const char *decision = arena_strn(f->arena, name, (size_t)(strstr(name, MARK) - name));
-    ohmen_status status = weigh_compile(f, decision, &w, e);
-    if (status == OHMEN_OK)
-        status = figures_evaluate(f, e);
+    ohmen_status status = weigh_ranked(f, decision, &w, e);
     if (status != OHMEN_OK)
         return status;
-    weigh_rank(f, w);
     leans_find(f, w, &all);
     nearest_init(&near, name);
     for (size_t i = 0; i < all.n; i++) {

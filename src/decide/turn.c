@@ -412,17 +412,6 @@ static const struct turn *named(const struct turns *all, const char *name, struc
     return NULL;
 }
 
-static ohmen_status ranked(struct figures *f, const char *decision, struct weighing **out,
-                           ohmen_error *e)
-{
-    ohmen_status status = weigh_compile(f, decision, out, e);
-    if (status == OHMEN_OK)
-        status = figures_evaluate(f, e);
-    if (status == OHMEN_OK)
-        weigh_rank(f, *out);
-    return status;
-}
-
 /* As reports look first, and farther where they have not found it. */
 ohmen_status turn_find(struct figures *f, const char *name, struct turn *out, ohmen_error *e)
 {
@@ -431,7 +420,7 @@ ohmen_status turn_find(struct figures *f, const char *name, struct turn *out, oh
     struct weighing *w;
     struct nearest near;
     const char *decision = arena_strn(a, name, (size_t)(strstr(name, MARK) - name));
-    ohmen_status status = ranked(f, decision, &w, e);
+    ohmen_status status = weigh_ranked(f, decision, &w, e);
     nearest_init(&near, name);
     for (size_t i = 0; status == OHMEN_OK && i < sizeof reaches / sizeof *reaches; i++) {
         struct turns all;

@@ -42,10 +42,10 @@ static bool is_frequency(const struct gathering *x, figure_id id)
     return g->property == PROPERTY_FREQUENCY && !g->q1 && is_weighed(x, unit_of(x->f, id)->id);
 }
 
-static bool is_leaf(const struct gathering *x, figure_id id)
+bool turn_is_stated(struct figures *f, figure_id id)
 {
     struct figure_ids inputs = {0};
-    figure_inputs(x->f, x->f->arena, id, &inputs);
+    figure_inputs(f, f->arena, id, &inputs);
     return inputs.n == 0;
 }
 
@@ -54,7 +54,7 @@ static bool is_input(const struct gathering *x, figure_id id)
 {
     const struct figure *g = figure_at(x->f, id);
     return g->text && x->f->of_node.at[g->node] == id && prober_leads(x->p, g->node) &&
-           (is_frequency(x, id) || is_leaf(x, id));
+           (is_frequency(x, id) || turn_is_stated(x->f, id));
 }
 
 /* --- the same quantity --- */
@@ -175,7 +175,8 @@ static void gather(struct gathering *x, figure_id id)
         return;
     *array_push(x->f->arena, known) = x->out->n;
     struct turn_input *in = array_push(x->f->arena, x->out);
-    *in = (struct turn_input){.figure = id, .now = now, .high = INFINITY};
+    *in = (struct turn_input){
+        .figure = id, .name = figure_name(x->f, x->f->arena, id), .now = now, .high = INFINITY};
     add_node(x, in, id);
 }
 

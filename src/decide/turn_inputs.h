@@ -14,6 +14,7 @@ struct turn_node {
 
 struct turn_input {
     figure_id figure; /* the most basic one: under the fewest changes */
+    const char *name; /* of that figure */
     double now;       /* > 0 */
     double low, high; /* its range */
     ARRAY(struct turn_node) nodes;
@@ -23,6 +24,9 @@ struct turn_inputs ARRAY_BODY(struct turn_input);
 /* Those of the fewest changes first, then by name. `p` knows the targets. */
 void turn_inputs_of(struct figures *f, const struct weighing *w, const struct prober *p,
                     struct turn_inputs *out);
+
+/* Does a document state it, as it does not the frequency of a hazard that is a formula? */
+bool turn_is_stated(struct figures *f, figure_id id);
 
 /* The distribution of what is not known of a figure; NULL where it is certain or varies from one
  * occurrence to the next. */

@@ -329,6 +329,17 @@ void weigh_rank(struct figures *f, struct weighing *w)
         w->alternatives.at[w->order[i]].rank = i + 1;
 }
 
+ohmen_status weigh_ranked(struct figures *f, const char *decision, struct weighing **out,
+                          ohmen_error *e)
+{
+    ohmen_status status = weigh_compile(f, decision, out, e);
+    if (status == OHMEN_OK)
+        status = figures_evaluate(f, e);
+    if (status == OHMEN_OK)
+        weigh_rank(f, *out);
+    return status;
+}
+
 ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
 {
     const char *dot = strchr(name, '.');

@@ -109,6 +109,10 @@ ohmen_status weigh_compile(struct figures *f, const char *decision, struct weigh
  * figures_evaluate has been called. */
 void weigh_rank(struct figures *f, struct weighing *w);
 
+/* Compiles a decision, evaluates all that was compiled, and ranks. */
+ohmen_status weigh_ranked(struct figures *f, const char *decision, struct weighing **out,
+                          ohmen_error *e);
+
 /* Finds any figure, those of decisions and options among them. */
 ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e);
 

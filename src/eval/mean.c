@@ -315,3 +315,36 @@ enum mean_method means_method(const struct means *m, node_id n)
     const struct curved *c = curved_of(m, n);
     return c ? c->method : MEAN_EXACT;
 }
+
+/* ---- as values ---- */
+
+/* The means of a DIAGRAM's results, behind those of the copy; their place. */
+static double results_as_values(const struct means *m, node_id n, struct eval *to)
+{
+    const struct curved *c = curved_of(m, n);
+    size_t place = to->results.n, n_results = eval_results(m->v, n);
+    for (size_t k = 0; k < n_results; k++) {
+        double sum = 0;
+        for (size_t s = 0; s < c->sets; s++)
+            sum += m->v->results.at[(size_t)mean_in(m, c, s) + k];
+        *array_push(to->arena, &to->results) = sum / c->sets;
+    }
+    return (double)place;
+}
+
+const struct eval *means_as_values(const struct means *m, struct arena *a)
+{
+    struct eval *to = NEW(a, struct eval);
+    *to = (struct eval){.arena = a, .g = m->v->g, .done = m->done};
+    array_reserve(a, &to->value, m->done);
+    array_reserve(a, &to->results, m->v->results.n);
+    for (size_t i = 0; i < m->v->results.n; i++)
+        *array_push(a, &to->results) = m->v->results.at[i];
+    for (node_id n = 0; n < m->done; n++) {
+        double x = m->v->value.at[n];
+        if (curved_of(m, n))
+            x = graph_at(to->g, n)->op == OP_DIAGRAM ? results_as_values(m, n, to) : means_of(m, n);
+        *array_push(a, &to->value) = x;
+    }
+    return to;
+}

@@ -95,4 +95,8 @@ void means_change_over(struct means *m);
 /* The worst method in what the node's mean is made of. */
 enum mean_method means_method(const struct means *m, node_id n);
 
+/* An evaluation of which each value is a mean, in `a`: of all nodes that have one. It is a copy,
+ * not to be evaluated further. A DIAGRAM has for each result the mean over all sets. */
+const struct eval *means_as_values(const struct means *m, struct arena *a);
+
 #endif

@@ -6,6 +6,7 @@
  * are sorted, so that arguments come before what uses them. */
 #include "eval/probe.h"
 
+#include "eval/adjust.h"
 #include "eval/state.h"
 
 #include <assert.h>
@@ -40,8 +41,9 @@ struct prober {
     struct nodes replaced, steps;
     unsigned char *order; /* of the steps, and of what is replaced: see order_of */
     bool linear;
-    ARRAY(struct kept) kept; /* of DIAGRAM nodes over windows that were evaluated */
-    uint32_t *kept_of;       /* by node: number of its kept one from 1 on; 0: none */
+    ARRAY(struct kept) kept;         /* of DIAGRAM nodes over windows that were evaluated */
+    uint32_t *kept_of;               /* by node: number of its kept one from 1 on; 0: none */
+    struct adjustments *adjustments; /* of means; NULL: of points */
 };
 
 /* ---- who uses whom ---- */
@@ -97,6 +99,14 @@ struct prober *prober_new(struct arena *a, const struct eval *v, size_t n_target
     copy_values(p, v);
     find_leading(p, n_targets, targets);
     list_users(p);
+    return p;
+}
+
+struct prober *prober_of_means(struct arena *a, const struct means *m, size_t n_targets,
+                               const node_id *targets)
+{
+    struct prober *p = prober_new(a, means_as_values(m, a), n_targets, targets);
+    p->adjustments = adjustments_new(a, m, p->of);
     return p;
 }
 
@@ -227,6 +237,8 @@ void prober_open(struct prober *p, size_t n, const node_id *nodes)
         p->order[step] = (unsigned char)order_of(p, step);
         p->linear = p->linear && p->order[step] == ORDER_LINEAR;
     }
+    if (p->adjustments)
+        adjustments_open(p->adjustments, n, nodes, p->steps.n, p->steps.at);
 }
 
 bool prober_leads(const struct prober *p, node_id n)
@@ -242,6 +254,11 @@ bool prober_moves(const struct prober *p, node_id n)
 bool prober_is_linear(const struct prober *p)
 {
     return p->linear;
+}
+
+bool prober_is_exact(const struct prober *p)
+{
+    return !p->adjustments || adjustments_are_exact(p->adjustments);
 }
 
 /* ---- diagrams over windows ---- */
@@ -301,6 +318,8 @@ static bool take_diagram(struct prober *p, node_id n)
         take_average(p, n, v->results.at + place);
     else
         eval_node(v, n, place);
+    if (p->adjustments)
+        adjust(p->adjustments, n, v->results.at + place);
     for (size_t k = 0; k < eval_results(v, n); k++)
         if (!isfinite(v->results.at[place + k]))
             return false;
@@ -313,6 +332,8 @@ static bool take_step(struct prober *p, node_id n)
     if (graph_at(v->g, n)->op == OP_DIAGRAM)
         return take_diagram(p, n);
     v->value.at[n] = eval_node(v, n, 0);
+    if (p->adjustments)
+        adjust(p->adjustments, n, &v->value.at[n]);
     return isfinite(v->value.at[n]);
 }
 

@@ -9,7 +9,7 @@
 #ifndef EVAL_PROBE_H
 #define EVAL_PROBE_H
 
-#include "eval/eval.h"
+#include "eval/mean.h"
 
 struct prober;
 
@@ -17,6 +17,24 @@ struct prober;
  * here. Targets have one value each (no DIAGRAM). */
 struct prober *prober_new(struct arena *a, const struct eval *v, size_t n_targets,
                           const node_id *targets);
+
+/* The same of means instead of point values (means_update was called): where nothing is moved, all
+ * is at its mean over what is unknown. Nodes that are moved are certain then, and those INPUT nodes
+ * among them are taken as all there are of their input. A node whose rule is linear in what is
+ * still unknown has the mean that the rule makes of the means of its arguments, exactly. Any other
+ * one (graph_bends; a product of several sampled means, too) that depends on what is moved has its
+ * rule at those means
+ * - times what its mean is to that where nothing is moved (plus the difference, where it is 0
+ *   there, and for EITHER and DIAGRAM), if it does not bend in what is moved. That is exact where
+ *   the node is a function of what is moved times one of all else, otherwise approximate;
+ * - as it is, if it bends in what is moved, too: approximate. */
+struct prober *prober_of_means(struct arena *a, const struct means *m, size_t n_targets,
+                               const node_id *targets);
+
+/* Is what the targets get at each point, apart from rounding, what the evaluation of a graph
+ * makes of them in which the nodes are constants of these values: always of points, of means as
+ * told above? By structure: false also where what is approximate reaches no target after all. */
+bool prober_is_exact(const struct prober *p);
 
 /* Opens it for other nodes; those before are as they were again. Nodes with one value each, and no
  * COURSE, in any order. Where one of them depends on another it is replaced all the same. */
