@@ -16,7 +16,7 @@ struct mapping {
     struct moving moving;
     const struct turn_input *input[2]; /* x, y */
     size_t n_alternatives;
-    struct map *out;
+    struct choice_map *out;
 };
 
 /* --- which inputs --- */
@@ -68,7 +68,7 @@ static bool is_open(const struct mapping *m)
 
 static ohmen_status choose(struct mapping *m, ohmen_error *e)
 {
-    struct swings swings;
+    struct input_swings swings;
     struct leans leans = {0};
     if (!is_open(m))
         return OHMEN_OK;
@@ -195,7 +195,7 @@ static struct map_point *point_at(const struct mapping *m, enum axis moves, size
 
 static struct map_point take(struct mapping *m, enum axis moves, size_t number, size_t i)
 {
-    const struct map *out = m->out;
+    const struct choice_map *out = m->out;
     return moves == AXIS_X ? take_point(m, out->x.at[i], out->y.at[number])
                            : take_point(m, out->x.at[number], out->y.at[i]);
 }
@@ -222,7 +222,7 @@ static bool is_line_in(struct mapping *m, enum axis moves)
 
 static ohmen_status take_points(struct mapping *m, ohmen_error *e)
 {
-    struct map *out = m->out;
+    struct choice_map *out = m->out;
     bool x_line = is_line_in(m, AXIS_X), y_line = is_line_in(m, AXIS_Y);
     enum axis moves = x_line || !y_line ? AXIS_X : AXIS_Y;
     size_t runs = moves == AXIS_X ? out->y.n : out->x.n;
@@ -265,9 +265,9 @@ static void find_lines(struct mapping *m)
 /* --- the whole --- */
 
 ohmen_status map_find(struct figures *f, const struct weighing *w, const char *x, const char *y,
-                      size_t columns, size_t rows, struct map *out, ohmen_error *e)
+                      size_t columns, size_t rows, struct choice_map *out, ohmen_error *e)
 {
-    struct map found = {0};
+    struct choice_map found = {0};
     struct mapping m = {.n_alternatives = w->alternatives.n, .out = &found};
     moving_open(&m.moving, f, w);
     ohmen_status status = find_inputs(&m, x, y, e);

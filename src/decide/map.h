@@ -48,7 +48,7 @@ struct map_line {
     double along;
 };
 
-struct map {
+struct choice_map {
     const char *name; /* DECISION.map[INPUT][INPUT], first x */
     struct map_axis x, y;
     struct map_point *points;     /* row by row from the least y: points[row * x.n + column] */
@@ -63,6 +63,6 @@ struct map {
  * stands twice, OHMEN_COMPUTE where there are no two inputs, or a percentile or today's point
  * cannot be computed. Lives in the arena of the figures. */
 ohmen_status map_find(struct figures *f, const struct weighing *w, const char *x, const char *y,
-                      size_t columns, size_t rows, struct map *out, ohmen_error *e);
+                      size_t columns, size_t rows, struct choice_map *out, ohmen_error *e);
 
 #endif

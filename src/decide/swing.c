@@ -17,12 +17,12 @@ struct swinging {
     struct moving moving;
     size_t best, second; /* of today */
     const double *now;   /* worth, by alternative */
-    struct swings *out;
+    struct input_swings *out;
 };
 
 /* --- one input --- */
 
-static ohmen_status find_ends(const struct quantity *q, struct swing *s, ohmen_error *e)
+static ohmen_status find_ends(const struct quantity *q, struct input_swing *s, ohmen_error *e)
 {
     static const double points[] = {SWING_LOW, SWING_HIGH};
     ohmen_status status = OHMEN_OK;
@@ -45,7 +45,7 @@ static bool take_end(struct swinging *x, struct swing_end *end)
 }
 
 /* Does the input move any alternative, between its ends or from today? */
-static bool moves_any(const struct swinging *x, const struct swing *s)
+static bool moves_any(const struct swinging *x, const struct input_swing *s)
 {
     for (size_t i = 0; i < x->moving.w->alternatives.n; i++)
         if (s->ends[0].worth[i] != s->ends[1].worth[i] || s->ends[0].worth[i] != x->now[i])
@@ -57,7 +57,7 @@ static ohmen_status add_swing(struct swinging *x, const struct turn_input *in, o
 {
     struct arena *a = x->moving.f->arena;
     const struct quantity *q = turn_unknown(x->moving.f, in->figure);
-    struct swing s = {.input = in->figure, .name = in->name, .now = in->now};
+    struct input_swing s = {.input = in->figure, .name = in->name, .now = in->now};
     if (!q || !moving_reaches(&x->moving, in))
         return OHMEN_OK;
     moving_take(&x->moving, 1, &in);
@@ -82,7 +82,7 @@ static ohmen_status add_swing(struct swinging *x, const struct turn_input *in, o
 
 static int by_width(const void *p, const void *q)
 {
-    const struct swing *a = p, *b = q;
+    const struct input_swing *a = p, *b = q;
     if (a->width != b->width)
         return a->width > b->width ? -1 : 1;
     return text_compare(a->name, b->name);
@@ -98,11 +98,11 @@ static const double *worth_now(const struct figures *f, const struct weighing *w
     return worth;
 }
 
-ohmen_status swings_find(struct figures *f, const struct weighing *w, struct swings *out,
+ohmen_status swings_find(struct figures *f, const struct weighing *w, struct input_swings *out,
                          ohmen_error *e)
 {
     struct swinging x = {.out = out};
-    struct swings found = {.is_exact = true};
+    struct input_swings found = {.is_exact = true};
     *out = found;
     if (w->alternatives.n < 2)
         return OHMEN_OK;
@@ -124,7 +124,7 @@ ohmen_status swings_find(struct figures *f, const struct weighing *w, struct swi
 
 /* --- by name --- */
 
-const char *swing_name(struct figures *f, const struct weighing *w, const struct swing *s,
+const char *swing_name(struct figures *f, const struct weighing *w, const struct input_swing *s,
                        const struct alternative *of, enum swing_side side)
 {
     return arena_printf(f->arena, "%s" MARK "%s].%s.%s", w->id, s->name, of->name,
@@ -138,7 +138,7 @@ bool swing_is_named(const char *name)
 }
 
 /* The one of that name among the ends of a swing. */
-static bool is_among(struct figures *f, const struct weighing *w, const struct swing *s,
+static bool is_among(struct figures *f, const struct weighing *w, const struct input_swing *s,
                      const char *name, struct nearest *near, struct swing_value *out)
 {
     for (size_t i = 0; i < w->alternatives.n; i++)
@@ -165,7 +165,7 @@ ohmen_status swing_find(struct figures *f, const char *name, struct swing_value 
 {
     struct weighing *w;
     struct nearest near;
-    struct swings all;
+    struct input_swings all;
     const char *decision = arena_strn(f->arena, name, (size_t)(strstr(name, MARK) - name));
     ohmen_status status = weigh_ranked(f, decision, &w, e);
     if (status == OHMEN_OK)

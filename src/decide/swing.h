@@ -35,7 +35,7 @@ struct swing_end {
     double difference;   /* worth of today's best less that of today's second */
 };
 
-struct swing {
+struct input_swing {
     figure_id input;
     const char *name;         /* of that figure */
     double now;               /* its mean */
@@ -45,8 +45,8 @@ struct swing {
     bool is_exact;
 };
 
-struct swings {
-    ARRAY(struct swing) list; /* widest first, ties by name */
+struct input_swings {
+    ARRAY(struct input_swing) list; /* widest first, ties by name */
     const struct alternative *best, *second;
     ARRAY(figure_id)
     not_possible;  /* uncertain inputs at an end of which a probability were none,
@@ -57,19 +57,19 @@ struct swings {
 
 /* weigh_rank has been called. Nothing swings where doing nothing is the only alternative.
  * OHMEN_COMPUTE when a percentile cannot be computed. Lives in the arena of the figures. */
-ohmen_status swings_find(struct figures *f, const struct weighing *w, struct swings *out,
+ohmen_status swings_find(struct figures *f, const struct weighing *w, struct input_swings *out,
                          ohmen_error *e);
 
 /* One end of one alternative, by name: DECISION.swing[INPUT].ALTERNATIVE.low */
 struct swing_value {
     const char *name;
-    struct swing swing;
+    struct input_swing swing;
     enum swing_side side;
     const struct alternative *of; /* has a net present value: is not doing nothing */
     double worth;
 };
 
-const char *swing_name(struct figures *f, const struct weighing *w, const struct swing *s,
+const char *swing_name(struct figures *f, const struct weighing *w, const struct input_swing *s,
                        const struct alternative *of, enum swing_side side);
 
 /* Does a name have the form of swing_name? */

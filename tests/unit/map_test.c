@@ -39,7 +39,7 @@ static double annuity(void)
     "c, is: " damage "}}}}"
 
 static void find(struct loaded *l, const struct restated *r, const char *x, const char *y,
-                 struct weighing **w, struct map *m)
+                 struct weighing **w, struct choice_map *m)
 {
     ohmen_error e = OHMEN_ERROR_INIT;
     *w = restated_weigh(l, arena, restated_text(arena, r, NULL));
@@ -67,7 +67,7 @@ START_TEST(points_and_lines)
 {
     struct loaded l;
     struct weighing *w;
-    struct map m;
+    struct choice_map m;
     double a = annuity();
     find(&l, &simple, "r.rate", "A.invest", &w, &m);
     ck_assert_str_eq(m.name, "D.map[r.rate][A.invest]");
@@ -94,7 +94,7 @@ START_TEST(lines_are_where_they_draw_level)
 {
     struct loaded l;
     struct weighing *w;
-    struct map m;
+    struct choice_map m;
     double a = annuity();
     size_t expected = 0;
     find(&l, &simple, "r.rate", "A.invest", &w, &m);
@@ -147,7 +147,7 @@ START_TEST(axes_of_all_sorts)
 {
     struct loaded l;
     struct weighing *w;
-    struct map m;
+    struct choice_map m;
     double far = pow(10, 2.3263478740408408 / 1.6448536269514722);
     find(&l, &axes, "r.rate", "v.value", &w, &m);
     ck_assert(m.x.in_logs && !m.y.in_logs && m.x.is_uncertain && !m.y.is_uncertain);
@@ -169,7 +169,7 @@ START_TEST(inputs_by_default)
 {
     struct loaded l;
     struct weighing *w;
-    struct map m;
+    struct choice_map m;
     find(&l, &axes, NULL, NULL, &w, &m);
     ck_assert_str_eq(m.x.name, "r.rate");
     ck_assert_str_eq(m.y.name, "R.fails"); /* k does not swing from 5 to 95 % */
@@ -191,7 +191,7 @@ START_TEST(names_that_are_wrong)
     };
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
         struct loaded l;
-        struct map m;
+        struct choice_map m;
         ohmen_error e = OHMEN_ERROR_INIT;
         struct weighing *w = restated_weigh(&l, arena, restated_text(arena, &axes, NULL));
         ohmen_status status = map_find(l.figures, w, cases[i].x, cases[i].y, 5, 5, &m, &e);
@@ -221,7 +221,7 @@ START_TEST(ties_go_by_name)
         2, inputs};
     struct loaded l;
     struct weighing *w;
-    struct map m;
+    struct choice_map m;
     size_t a = 0;
     find(&l, &r, "r.rate", "H.damage.lost.loss", &w, &m);
     for (size_t i = 0; i < m.x.n * m.y.n; i++) {
@@ -255,7 +255,7 @@ START_TEST(points_that_are_not_possible)
         2, inputs};
     struct loaded l;
     struct weighing *w;
-    struct map m;
+    struct choice_map m;
     size_t none = 0;
     find(&l, &r, "H.share.never.bad", "H.share.never.good", &w, &m);
     for (size_t i = 0; i < m.x.n * m.y.n; i++) {
@@ -293,7 +293,7 @@ static const struct restated several = {
     "decisions: {D: {question: What?, options: [A, B]}}\n",
     4, several_inputs};
 
-static void check_point(const struct map *m, const struct weighing *w, size_t i)
+static void check_point(const struct choice_map *m, const struct weighing *w, size_t i)
 {
     struct loaded l;
     double x[] = {NAN, NAN, NAN, NAN};
@@ -322,7 +322,7 @@ START_TEST(registers_that_state_a_point)
     for (size_t i = 0; i < sizeof pairs / sizeof *pairs; i++) {
         struct loaded l;
         struct weighing *w;
-        struct map m;
+        struct choice_map m;
         find(&l, &several, pairs[i][0], pairs[i][1], &w, &m);
         ck_assert(m.is_exact);
         for (size_t k = i; k < m.x.n * m.y.n; k += 17) {

@@ -36,14 +36,14 @@ static double annuity(void)
     return (double)sum;
 }
 
-static void find(struct loaded *l, const struct restated *r, struct weighing **w, struct swings *s)
+static void find(struct loaded *l, const struct restated *r, struct weighing **w, struct input_swings *s)
 {
     ohmen_error e = OHMEN_ERROR_INIT;
     *w = restated_weigh(l, arena, restated_text(arena, r, NULL));
     ck_assert_msg(swings_find(l->figures, *w, s, &e) == OHMEN_OK, "%s", e.text);
 }
 
-static const struct swing *swing_of(const struct swings *s, const char *input)
+static const struct input_swing *swing_of(const struct input_swings *s, const char *input)
 {
     for (size_t i = 0; i < s->list.n; i++)
         if (text_equal(s->list.at[i].name, input))
@@ -83,14 +83,14 @@ START_TEST(one_option)
         4, inputs};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     double a = annuity();
     find(&l, &r, &w, &s);
     ck_assert_uint_eq(s.list.n, 2); /* what varies and what reaches nothing do not swing */
     ck_assert(s.is_exact && s.list.at[0].is_exact && s.list.at[1].is_exact);
     ck_assert_str_eq(s.best->name, "A");
     ck_assert_str_eq(s.second->name, "do-nothing");
-    const struct swing *x = &s.list.at[0], *y = &s.list.at[1];
+    const struct input_swing *x = &s.list.at[0], *y = &s.list.at[1];
     ck_assert_str_eq(x->name, "r.rate");
     restated_check("now", x->now, 0.25, 0, 1e-14);
     restated_check("low", x->ends[0].at, 0.07, 0, 1e-14);
@@ -120,11 +120,11 @@ START_TEST(curved_in_itself_alone)
                                       1, inputs};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     double a = annuity();
     find(&l, &r, &w, &s);
     restated_check("now", restated_worth(&l, w, "A"), 400 * (4 - 1 / 3.) * a - 900, 0, EXACT);
-    const struct swing *x = swing_of(&s, "v.value");
+    const struct input_swing *x = swing_of(&s, "v.value");
     ck_assert(x->is_exact && s.is_exact);
     restated_check("low", x->ends[0].worth[1], 400 * 1.1 * 2.9 * a - 900, 0, EXACT);
     restated_check("high", x->ends[1].worth[1], 400 * 2.9 * 1.1 * a - 900, 0, EXACT);
@@ -147,10 +147,10 @@ START_TEST(curved_in_another)
                                       2, inputs};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     double a = annuity(), proportion = (6 + 13 / 3.) / 10;
     find(&l, &r, &w, &s);
-    const struct swing *x = swing_of(&s, "v.value"), *y = swing_of(&s, "u.value");
+    const struct input_swing *x = swing_of(&s, "v.value"), *y = swing_of(&s, "u.value");
     ck_assert(!x->is_exact && y->is_exact && !s.is_exact);
     restated_check("approximate", x->ends[0].worth[1], 400 * 2 * (2.1 + 2) * proportion * a - 900,
                    0, EXACT);
@@ -174,10 +174,10 @@ START_TEST(curved_in_both)
                                       2, inputs};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     double a = annuity();
     find(&l, &r, &w, &s);
-    const struct swing *x = swing_of(&s, "v.value");
+    const struct input_swing *x = swing_of(&s, "v.value");
     ck_assert(!x->is_exact);
     for (size_t k = 0; k < 2; k++) {
         double v = x->ends[k].at;
@@ -211,7 +211,7 @@ START_TEST(ties_go_by_name)
         2, inputs};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     find(&l, &r, &w, &s);
     ck_assert_str_eq(s.best->name, "A");
     ck_assert_str_eq(s.second->name, "B");
@@ -234,7 +234,7 @@ START_TEST(nothing_swings)
                                       0, NULL};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     find(&l, &r, &w, &s);
     ck_assert_uint_eq(s.list.n, 0);
     ck_assert(s.is_exact);
@@ -258,7 +258,7 @@ START_TEST(ends_that_are_not_possible)
         1, inputs};
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     find(&l, &r, &w, &s);
     ck_assert_uint_eq(s.list.n, 0);
     ck_assert_uint_eq(s.not_possible.n, 1);
@@ -274,7 +274,7 @@ END_TEST
 #define NEAR_WORTH 0.01
 
 static const double *worth_anew(const struct restated *r, const struct weighing *w,
-                                const struct swing *s, enum swing_side side, const char **best)
+                                const struct input_swing *s, enum swing_side side, const char **best)
 {
     struct loaded l;
     double *x = NEW_ARRAY(arena, r->n, double);
@@ -298,7 +298,7 @@ static double greatest(const double *worth, size_t n)
     return size;
 }
 
-static size_t weigh_anew(const struct restated *r, const struct weighing *w, const struct swing *s)
+static size_t weigh_anew(const struct restated *r, const struct weighing *w, const struct input_swing *s)
 {
     const char *best[2];
     size_t n = w->alternatives.n;
@@ -365,13 +365,13 @@ START_TEST(registers_that_state_an_end)
 {
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     size_t exact = 0;
     find(&l, &many, &w, &s);
     ck_assert_uint_eq(s.list.n, many.n);
     ck_assert_uint_eq(s.not_possible.n, 0);
     for (size_t i = 0; i < s.list.n; i++) {
-        const struct swing *x = &s.list.at[i];
+        const struct input_swing *x = &s.list.at[i];
         bool sampled = strchr("xyz", x->name[0]) && text_equal(x->name + 1, ".value");
         ck_assert_msg(x->is_exact == !sampled, "%s", x->name);
         exact += weigh_anew(&many, w, x);
@@ -416,11 +416,11 @@ START_TEST(diagrams_that_share)
 {
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     find(&l, &shared, &w, &s);
     ck_assert_uint_eq(s.list.n, shared.n);
     for (size_t i = 0; i < s.list.n; i++) {
-        const struct swing *x = &s.list.at[i];
+        const struct input_swing *x = &s.list.at[i];
         bool bends = text_equal(x->name, "Q.fails") || text_equal(x->name, "CT.fails");
         ck_assert_msg(x->is_exact == !bends, "%s", x->name);
         weigh_anew(&shared, w, x);
@@ -432,13 +432,13 @@ START_TEST(values_by_name)
 {
     struct loaded l;
     struct weighing *w;
-    struct swings s;
+    struct input_swings s;
     ohmen_error e = OHMEN_ERROR_INIT;
     struct swing_value v;
     find(&l, &many, &w, &s);
     for (size_t i = 0; i < s.list.n; i++)
         for (size_t k = 0; k < 2; k++) {
-            const struct swing *x = &s.list.at[i];
+            const struct input_swing *x = &s.list.at[i];
             const char *name =
                 swing_name(l.figures, w, x, &w->alternatives.at[3], (enum swing_side)k);
             ck_assert(swing_is_named(name));
@@ -542,7 +542,7 @@ START_TEST(random_registers)
     for (uint64_t seed = 1; seed <= 40; seed++) {
         struct loaded l;
         struct weighing *w;
-        struct swings s;
+        struct input_swings s;
         const struct restated *r = random_restated(seed);
         find(&l, r, &w, &s);
         for (size_t i = 0; i < s.list.n; i++) {
