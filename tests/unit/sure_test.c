@@ -56,7 +56,7 @@ static void check_near(const char *what, struct sampled got, double want, double
 START_TEST(clairvoyance_in_a_published_case)
 {
     static const char *const text = SETTINGS
-        "values: {X: {is: {values: {no: {is: 0 EUR, p: 60 %}, yes: {is: 110 EUR, p: rest}}}}}\n"
+        "values: {X: {is: {values: {spared: {is: 0 EUR, p: 60 %}, struck: {is: 110 EUR, p: rest}}}}}\n"
         "hazards: {H: {name: H, frequency: 1 per a, response: {never: {outcome: lost}}, "
         "outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: X}}}}}}\n"
         "options:\n"
