@@ -87,29 +87,27 @@ static size_t place_of(const struct weighing *w, const struct alternative *alt)
     return (size_t)(alt - w->alternatives.at);
 }
 
-static node_id net_node(const struct figures *f, const struct alternative *alt)
-{
-    return figure_at(f, alt->net)->node;
-}
-
-/* Inputs of both are those of the decision: the last alternative's section is behind all. */
-static ohmen_status find_moves(struct figures *f, struct arena *a, struct sure *x, ohmen_error *e)
+static ohmen_status find_moves(struct figures *f, struct arena *a, const figure_id *nets,
+                               struct sure *x, ohmen_error *e)
 {
     const struct weighing *w = x->weighing;
     size_t n = x->sample.sets * x->sample.points;
     double *difference = NEW_ARRAY(a, n, double);
+    figure_id below[2];
+    struct ranking q = {.plan = &x->plan, .n_sampled = x->sample.n_roots, .sampled = nets};
     if (!x->next)
         return OHMEN_OK;
     for (size_t i = 0; i < n; i++)
         difference[i] = worth_of(x, place_of(w, x->best), i) - worth_of(x, place_of(w, x->next), i);
-    node_id nodes[2];
-    size_t n_nodes = 0;
+    q.sets = x->sample.sets;
+    q.values = difference;
+    q.below = below;
+    q.least = LEAST_CORRELATION;
     if (x->best->n)
-        nodes[n_nodes++] = net_node(f, x->best);
+        below[q.n_below++] = x->best->net;
     if (x->next->n)
-        nodes[n_nodes++] = net_node(f, x->next);
-    return figure_ranks(f, a, &x->plan, n_nodes, nodes, difference, x->sample.sets,
-                        LEAST_CORRELATION, &x->moves, e);
+        below[q.n_below++] = x->next->net;
+    return figure_ranks(f, a, &q, &x->moves, e);
 }
 
 /* ---- all of it ---- */
@@ -133,7 +131,7 @@ ohmen_status sure_find(struct figures *f, struct arena *a, const struct weighing
     for (size_t k = 1; k < n; k++)
         x.of[k].net = figure_spread_of(f, a, &x.sample, k - 1, ids[k - 1]);
     count(a, &x);
-    status = find_moves(f, a, &x, e);
+    status = find_moves(f, a, ids, &x, e);
     if (status == OHMEN_OK)
         *out = x;
     return status;
@@ -188,14 +186,14 @@ static bool pick_value(struct figures *f, const struct sure *x, const char *name
         nearest_offer(near, known);
         if (!text_equal(known, name))
             continue;
-        *out = (struct sure_value){.name = known,
-                                   .kind = kind,
-                                   .weighing = w,
-                                   .of = of,
-                                   .value = value_of(x, kind, k),
-                                   .plan = x->plan,
-                                   .sets = x->sample.sets,
-                                   .points = x->sample.points};
+        *out =
+            (struct sure_value){.name = known,
+                                .kind = kind,
+                                .weighing = w,
+                                .of = of,
+                                .value = value_of(x, kind, k),
+                                .sure = x,
+                                .figure = kind == SURE_MOVES ? x->moves.at[k].figure : FIGURE_NONE};
         return true;
     }
     return false;
@@ -206,7 +204,7 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
 {
     struct weighing *w;
     struct nearest near;
-    struct sure x;
+    struct sure *x = NEW(f->arena, struct sure);
     enum sure_kind kind;
     const char *mark = find_mark(name, &kind);
     const char *decision = arena_strn(f->arena, name, (size_t)(mark - name));
@@ -216,11 +214,11 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
     if (status != OHMEN_OK)
         return status;
     weigh_rank(f, w);
-    status = sure_find(f, f->arena, w, plan, &x, e);
+    status = sure_find(f, f->arena, w, plan, x, e);
     if (status != OHMEN_OK)
         return status;
     nearest_init(&near, name);
-    if (pick_value(f, &x, name, kind, &near, out))
+    if (pick_value(f, x, name, kind, &near, out))
         return OHMEN_OK;
     return error_set(e, OHMEN_UNKNOWN, "the decision \"%s\" has no figure \"%s\"%s", w->id,
                      name + strlen(w->id) + 1, nearest_hint(f->arena, &near));

@@ -24,6 +24,14 @@ static ohmen_status not_finite(struct figures *f, size_t n, const figure_id *ids
                      figure_name(f, f->arena, ids[k]));
 }
 
+static node_id *nodes_of(const struct figures *f, struct arena *a, size_t n, const figure_id *ids)
+{
+    node_id *nodes = NEW_ARRAY(a, n, node_id);
+    for (size_t k = 0; k < n; k++)
+        nodes[k] = figure_at(f, ids[k])->node;
+    return nodes;
+}
+
 static ohmen_status sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
                            size_t n, const node_id *nodes, struct sampling *out, node_id *culprit,
                            ohmen_error *e)
@@ -36,10 +44,8 @@ static ohmen_status sample(struct figures *f, struct arena *a, const struct samp
 ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
                             size_t n, const figure_id *ids, struct sampling *out, ohmen_error *e)
 {
-    node_id culprit = NODE_NONE, *nodes = NEW_ARRAY(a, n, node_id);
+    node_id culprit = NODE_NONE, *nodes = nodes_of(f, a, n, ids);
     ohmen_error inner = OHMEN_ERROR_INIT;
-    for (size_t k = 0; k < n; k++)
-        nodes[k] = figure_at(f, ids[k])->node;
     ohmen_status status = sample(f, a, p, n, nodes, out, &culprit, &inner);
     if (status == OHMEN_COMPUTE && culprit != NODE_NONE)
         return not_finite(f, n, ids, culprit, e);
@@ -137,35 +143,96 @@ static size_t unknown_below(struct figures *f, struct arena *a, size_t n_below,
     return n;
 }
 
-/* The same unknown under several variants has several inputs of one name, with the same ranks. */
-static bool is_listed(const struct rank_inputs *all, const char *name)
+static const char *stream_of(const struct figures *f, node_id n)
 {
-    for (size_t i = 0; i < all->n; i++)
-        if (text_equal(all->at[i].name, name))
-            return true;
-    return false;
+    return f->input_names.at[graph_at(f->graph, n)->extra];
 }
 
-ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          size_t n_below, const node_id *below, const double *values, size_t sets,
-                          double least, struct rank_inputs *out, ohmen_error *e)
+/* The first figure of the node; FIGURE_NONE. */
+static figure_id figure_of(const struct figures *f, node_id n)
 {
-    struct arena *scratch = arena_child(a);
-    struct sampling_plan plan = *p;
-    struct sampling drawn;
-    node_id *nodes;
-    size_t n = unknown_below(f, scratch, n_below, below, &nodes);
-    plan.most_batches = sets / SAMPLING_BATCH;
+    return n < f->of_node.n ? f->of_node.at[n] : FIGURE_NONE;
+}
+
+/* Fewer changes first, then by name. */
+static bool is_before(const struct figures *f, struct arena *a, figure_id p, figure_id q)
+{
+    size_t n = f->units.at[figure_at(f, p)->unit]->variant->n;
+    size_t m = f->units.at[figure_at(f, q)->unit]->variant->n;
+    return n != m ? n < m : text_compare(figure_name(f, a, p), figure_name(f, a, q)) < 0;
+}
+
+/* The same unknown under several variants has several inputs of one stream, with the same ranks:
+ * the one that stands for them. */
+struct streams {
+    const node_id *nodes;
+    size_t n;
+    struct strmap figures; /* stream -> figure_id of the most basic one, where there is one */
+    struct strmap told;    /* streams that are in the list */
+};
+
+static void find_streams(const struct figures *f, struct arena *a, struct streams *s)
+{
+    for (size_t i = 0; i < s->n; i++) {
+        const char *stream = stream_of(f, s->nodes[i]);
+        figure_id id = figure_of(f, s->nodes[i]);
+        figure_id *known = strmap_get(&s->figures, stream);
+        if (id == FIGURE_NONE || (known && !is_before(f, a, id, *known)))
+            continue;
+        figure_id *kept = NEW(a, figure_id);
+        *kept = id;
+        strmap_set(a, &s->figures, stream, kept);
+    }
+}
+
+static void add_rank(struct figures *f, struct arena *a, const struct streams *s, node_id n,
+                     double correlation, struct rank_inputs *out)
+{
+    const char *stream = stream_of(f, n);
+    const figure_id *known = strmap_get(&s->figures, stream);
+    *array_push(a, out) = (struct rank_input){
+        .input = graph_at(f->graph, n)->extra,
+        .name = known ? figure_name(f, a, *known) : stream,
+        .figure = known ? *known : FIGURE_NONE,
+        .correlation = correlation,
+    };
+}
+
+/* As the inputs were drawn for the sample: the place of each depends on all that was sampled. */
+static ohmen_status draw_again(struct figures *f, struct arena *a, const struct ranking *q,
+                               size_t n, const node_id *inputs, struct sampling *out,
+                               ohmen_error *e)
+{
+    struct sampling_plan plan = *q->plan;
+    struct sampler *s;
+    plan.most_batches = q->sets / SAMPLING_BATCH;
     plan.precision = 0;
     plan.watch = NULL;
-    ohmen_status status = sample(f, scratch, &plan, n, nodes, &drawn, NULL, e);
+    ohmen_status status = sampler_new(a, f->means, &plan, q->n_sampled,
+                                      nodes_of(f, a, q->n_sampled, q->sampled), &s, e);
+    return status == OHMEN_OK ? sampler_run(a, s, n, inputs, out, NULL, e) : status;
+}
+
+ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct ranking *q,
+                          struct rank_inputs *out, ohmen_error *e)
+{
+    struct arena *scratch = arena_child(a);
+    struct sampling drawn;
+    node_id *nodes;
+    size_t n =
+        unknown_below(f, scratch, q->n_below, nodes_of(f, scratch, q->n_below, q->below), &nodes);
+    struct streams streams = {.nodes = nodes, .n = n};
+    find_streams(f, scratch, &streams);
+    ohmen_status status = draw_again(f, scratch, q, n, nodes, &drawn, e);
     for (size_t i = 0; status == OHMEN_OK && i < n; i++) {
-        uint32_t input = graph_at(f->graph, nodes[i])->extra;
-        const char *name = f->input_names.at[input];
-        double r =
-            statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
-        if (fabs(r) >= least && !is_listed(out, name))
-            *array_push(a, out) = (struct rank_input){input, name, r};
+        const char *stream = stream_of(f, nodes[i]);
+        if (strmap_has(&streams.told, stream))
+            continue;
+        strmap_set(scratch, &streams.told, stream, (void *)stream);
+        double r = statistics_rank_correlation(scratch, q->sets * drawn.points, drawn.values[i],
+                                               q->values);
+        if (fabs(r) >= q->least)
+            add_rank(f, a, &streams, nodes[i], r, out);
     }
     if (out->n > 1)
         qsort(out->at, out->n, sizeof *out->at, by_size);

@@ -42,16 +42,27 @@ const char *spread_name(const struct figures *f, struct arena *a, figure_id id,
 /* The unknown inputs of figures, by how their values rank with those of a figure. */
 struct rank_input {
     uint32_t input;   /* of the graph */
-    const char *name; /* of the stream (figures.input_names) */
+    const char *name; /* of its figure; of its stream (figures.input_names) where it has none */
+    figure_id figure; /* of the fewest changes among those of its stream; or FIGURE_NONE */
     double correlation;
 };
 struct rank_inputs ARRAY_BODY(struct rank_input);
 
-/* Of the unknown inputs below some nodes those that move with `values`, which come from as many sets
- * of a sample by the same plan: by the size of Spearman's rank correlation, ties by name;
- * correlations smaller than `least` are left out. The inputs are drawn once more. Lives in `a`. */
-ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          size_t n_below, const node_id *below, const double *values, size_t sets,
-                          double least, struct rank_inputs *out, ohmen_error *e);
+/* What is ranked: values that come from the figures of a sample. */
+struct ranking {
+    const struct sampling_plan *plan;
+    size_t n_sampled;
+    const figure_id *sampled; /* all that figures_sample was given: by these inputs are drawn */
+    size_t sets;              /* that it took */
+    const double *values;     /* one a sample */
+    size_t n_below;
+    const figure_id *below; /* some of the sampled figures: only their inputs are ranked */
+    double least;           /* correlations of a smaller size are left out */
+};
+
+/* The unknown inputs by the size of Spearman's rank correlation with the values, ties by name. The
+ * inputs are drawn once more. Lives in `a`. */
+ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct ranking *ranking,
+                          struct rank_inputs *out, ohmen_error *e);
 
 #endif
