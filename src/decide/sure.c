@@ -92,15 +92,16 @@ static node_id net_node(const struct figures *f, const struct alternative *alt)
     return figure_at(f, alt->net)->node;
 }
 
-/* Inputs of both are those of the decision: the last alternative's section is behind all. */
-static ohmen_status find_moves(struct figures *f, struct arena *a, struct sure *x, ohmen_error *e)
+/* `nets` are the figures of the sample. */
+static ohmen_status find_moves(struct figures *f, struct arena *a, const figure_id *nets,
+                               struct sure *x, ohmen_error *e)
 {
     const struct weighing *w = x->weighing;
-    size_t n = x->sample.sets * x->sample.points;
-    double *difference = NEW_ARRAY(a, n, double);
+    size_t n_values = x->sample.sets * x->sample.points, n = w->alternatives.n;
+    double *difference = NEW_ARRAY(a, n_values, double);
     if (!x->next)
         return OHMEN_OK;
-    for (size_t i = 0; i < n; i++)
+    for (size_t i = 0; i < n_values; i++)
         difference[i] = worth_of(x, place_of(w, x->best), i) - worth_of(x, place_of(w, x->next), i);
     node_id nodes[2];
     size_t n_nodes = 0;
@@ -108,7 +109,7 @@ static ohmen_status find_moves(struct figures *f, struct arena *a, struct sure *
         nodes[n_nodes++] = net_node(f, x->best);
     if (x->next->n)
         nodes[n_nodes++] = net_node(f, x->next);
-    return figure_ranks(f, a, &x->plan, n_nodes, nodes, difference, x->sample.sets,
+    return figure_ranks(f, a, &x->plan, n - 1, nets, n_nodes, nodes, difference, x->sample.sets,
                         LEAST_CORRELATION, &x->moves, e);
 }
 
@@ -133,7 +134,7 @@ ohmen_status sure_find(struct figures *f, struct arena *a, const struct weighing
     for (size_t k = 1; k < n; k++)
         x.of[k].net = figure_spread_of(f, a, &x.sample, k - 1, ids[k - 1]);
     count(a, &x);
-    status = find_moves(f, a, &x, e);
+    status = find_moves(f, a, ids, &x, e);
     if (status == OHMEN_OK)
         *out = x;
     return status;
