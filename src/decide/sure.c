@@ -87,27 +87,30 @@ static size_t place_of(const struct weighing *w, const struct alternative *alt)
     return (size_t)(alt - w->alternatives.at);
 }
 
+static node_id net_node(const struct figures *f, const struct alternative *alt)
+{
+    return figure_at(f, alt->net)->node;
+}
+
+/* `nets` are the figures of the sample. */
 static ohmen_status find_moves(struct figures *f, struct arena *a, const figure_id *nets,
                                struct sure *x, ohmen_error *e)
 {
     const struct weighing *w = x->weighing;
-    size_t n = x->sample.sets * x->sample.points;
-    double *difference = NEW_ARRAY(a, n, double);
-    figure_id below[2];
-    struct ranking q = {.plan = &x->plan, .n_sampled = x->sample.n_roots, .sampled = nets};
+    size_t n_values = x->sample.sets * x->sample.points, n = w->alternatives.n;
+    double *difference = NEW_ARRAY(a, n_values, double);
     if (!x->next)
         return OHMEN_OK;
-    for (size_t i = 0; i < n; i++)
+    for (size_t i = 0; i < n_values; i++)
         difference[i] = worth_of(x, place_of(w, x->best), i) - worth_of(x, place_of(w, x->next), i);
-    q.sets = x->sample.sets;
-    q.values = difference;
-    q.below = below;
-    q.least = LEAST_CORRELATION;
+    node_id nodes[2];
+    size_t n_nodes = 0;
     if (x->best->n)
-        below[q.n_below++] = x->best->net;
+        nodes[n_nodes++] = net_node(f, x->best);
     if (x->next->n)
-        below[q.n_below++] = x->next->net;
-    return figure_ranks(f, a, &q, &x->moves, e);
+        nodes[n_nodes++] = net_node(f, x->next);
+    return figure_ranks(f, a, &x->plan, n - 1, nets, n_nodes, nodes, difference, x->sample.sets,
+                        LEAST_CORRELATION, &x->moves, e);
 }
 
 /* ---- all of it ---- */

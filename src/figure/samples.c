@@ -32,21 +32,15 @@ static node_id *nodes_of(const struct figures *f, struct arena *a, size_t n, con
     return nodes;
 }
 
-static ohmen_status sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                           size_t n, const node_id *nodes, struct sampling *out, node_id *culprit,
-                           ohmen_error *e)
-{
-    struct sampler *s;
-    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, e);
-    return status == OHMEN_OK ? sampler_run(a, s, n, nodes, out, culprit, e) : status;
-}
-
 ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
                             size_t n, const figure_id *ids, struct sampling *out, ohmen_error *e)
 {
     node_id culprit = NODE_NONE, *nodes = nodes_of(f, a, n, ids);
     ohmen_error inner = OHMEN_ERROR_INIT;
-    ohmen_status status = sample(f, a, p, n, nodes, out, &culprit, &inner);
+    struct sampler *s;
+    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, &inner);
+    if (status == OHMEN_OK)
+        status = sampler_run(a, s, n, nodes, out, &culprit, &inner);
     if (status == OHMEN_COMPUTE && culprit != NODE_NONE)
         return not_finite(f, n, ids, culprit, e);
     return status == OHMEN_OK ? OHMEN_OK : error_set(e, status, "%s", inner.text);
@@ -54,14 +48,14 @@ ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sam
 
 /* ---- spreads ---- */
 
-static bool is_unknown(const struct figures *f, node_id n)
+bool figure_is_certain(const struct figures *f, figure_id id)
 {
     size_t count;
-    const uint32_t *inputs = graph_uncertain(f->graph, n, &count);
+    const uint32_t *inputs = graph_uncertain(f->graph, figure_at(f, id)->node, &count);
     for (size_t i = 0; i < count; i++)
         if (!f->input_varies.at[inputs[i]])
-            return true;
-    return false;
+            return false;
+    return true;
 }
 
 static struct figure_spread certain_spread(double x)
@@ -76,7 +70,7 @@ struct figure_spread figure_spread_of(const struct figures *f, struct arena *a,
                                       const struct sampling *s, size_t k, figure_id id)
 {
     struct figure_spread x = {0};
-    if (!is_unknown(f, figure_at(f, id)->node))
+    if (figure_is_certain(f, id))
         return certain_spread(figure_value(f, id));
     x.mean = statistics_mean(s->sets, s->points, s->values[k]);
     statistics_quantiles(a, s->sets, s->points, s->values[k], SPREAD_POINTS, spread_probability,
@@ -198,40 +192,40 @@ static void add_rank(struct figures *f, struct arena *a, const struct streams *s
     };
 }
 
-/* As the inputs were drawn for the sample: the place of each depends on all that was sampled. */
-static ohmen_status draw_again(struct figures *f, struct arena *a, const struct ranking *q,
-                               size_t n, const node_id *inputs, struct sampling *out,
-                               ohmen_error *e)
+/* The inputs as they were drawn for a sample of n figures: each at its place among those of all. */
+static ohmen_status draw_again(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                               size_t n, const figure_id *ids, size_t n_inputs,
+                               const node_id *inputs, struct sampling *out, ohmen_error *e)
 {
-    struct sampling_plan plan = *q->plan;
     struct sampler *s;
-    plan.most_batches = q->sets / SAMPLING_BATCH;
-    plan.precision = 0;
-    plan.watch = NULL;
-    ohmen_status status = sampler_new(a, f->means, &plan, q->n_sampled,
-                                      nodes_of(f, a, q->n_sampled, q->sampled), &s, e);
-    return status == OHMEN_OK ? sampler_run(a, s, n, inputs, out, NULL, e) : status;
+    ohmen_status status = sampler_new(a, f->means, p, n, nodes_of(f, a, n, ids), &s, e);
+    return status == OHMEN_OK ? sampler_run(a, s, n_inputs, inputs, out, NULL, e) : status;
 }
 
-ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct ranking *q,
-                          struct rank_inputs *out, ohmen_error *e)
+ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                          size_t n, const figure_id *ids, size_t n_below, const node_id *below,
+                          const double *values, size_t sets, double least, struct rank_inputs *out,
+                          ohmen_error *e)
 {
     struct arena *scratch = arena_child(a);
+    struct sampling_plan plan = *p;
     struct sampling drawn;
     node_id *nodes;
-    size_t n =
-        unknown_below(f, scratch, q->n_below, nodes_of(f, scratch, q->n_below, q->below), &nodes);
-    struct streams streams = {.nodes = nodes, .n = n};
+    size_t n_inputs = unknown_below(f, scratch, n_below, below, &nodes);
+    struct streams streams = {.nodes = nodes, .n = n_inputs};
     find_streams(f, scratch, &streams);
-    ohmen_status status = draw_again(f, scratch, q, n, nodes, &drawn, e);
-    for (size_t i = 0; status == OHMEN_OK && i < n; i++) {
+    plan.most_batches = sets / SAMPLING_BATCH;
+    plan.precision = 0;
+    plan.watch = NULL;
+    ohmen_status status = draw_again(f, scratch, &plan, n, ids, n_inputs, nodes, &drawn, e);
+    for (size_t i = 0; status == OHMEN_OK && i < n_inputs; i++) {
         const char *stream = stream_of(f, nodes[i]);
         if (strmap_has(&streams.told, stream))
             continue;
         strmap_set(scratch, &streams.told, stream, (void *)stream);
-        double r = statistics_rank_correlation(scratch, q->sets * drawn.points, drawn.values[i],
-                                               q->values);
-        if (fabs(r) >= q->least)
+        double r =
+            statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
+        if (fabs(r) >= least)
             add_rank(f, a, &streams, nodes[i], r, out);
     }
     if (out->n > 1)

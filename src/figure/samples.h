@@ -29,6 +29,9 @@ struct figure_spread {
 ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
                             size_t n, const figure_id *ids, struct sampling *out, ohmen_error *e);
 
+/* Is nothing unknown in the figure? */
+bool figure_is_certain(const struct figures *f, figure_id id);
+
 /* The spread of figure k of a sample. */
 struct figure_spread figure_spread_of(const struct figures *f, struct arena *a,
                                       const struct sampling *s, size_t k, figure_id id);
@@ -48,21 +51,13 @@ struct rank_input {
 };
 struct rank_inputs ARRAY_BODY(struct rank_input);
 
-/* What is ranked: values that come from the figures of a sample. */
-struct ranking {
-    const struct sampling_plan *plan;
-    size_t n_sampled;
-    const figure_id *sampled; /* all that figures_sample was given: by these inputs are drawn */
-    size_t sets;              /* that it took */
-    const double *values;     /* one a sample */
-    size_t n_below;
-    const figure_id *below; /* some of the sampled figures: only their inputs are ranked */
-    double least;           /* correlations of a smaller size are left out */
-};
-
-/* The unknown inputs by the size of Spearman's rank correlation with the values, ties by name. The
- * inputs are drawn once more. Lives in `a`. */
-ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct ranking *ranking,
-                          struct rank_inputs *out, ohmen_error *e);
+/* Of the unknown inputs below some of the figures of a sample those that move with `values`, which
+ * come from as many sets of that sample, of n figures by the same plan: by the size of Spearman's
+ * rank correlation, ties by name; correlations smaller than `least` are left out. The inputs are
+ * drawn once more. Lives in `a`. */
+ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                          size_t n, const figure_id *ids, size_t n_below, const node_id *below,
+                          const double *values, size_t sets, double least, struct rank_inputs *out,
+                          ohmen_error *e);
 
 #endif
