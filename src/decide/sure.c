@@ -8,9 +8,9 @@
 static const double LEAST_CORRELATION = 0.1;
 
 static const char *const kind_words[SURE_KINDS] = {
-    [SURE_BEST] = "best",
-    [SURE_WORTH_IT] = "worth-it",
-    [SURE_REGRET] = "regret",
+    [SURE_BEST] = "best",        [SURE_WORTH_IT] = "worth-it",
+    [SURE_REGRET] = "regret",    [SURE_P5] = "p5",
+    [SURE_P50] = "p50",          [SURE_P95] = "p95",
     [SURE_MOVES] = "moves-with",
 };
 
@@ -174,6 +174,9 @@ static struct sampled value_of(const struct sure *x, enum sure_kind kind, size_t
     case SURE_BEST: return x->of[k].best;
     case SURE_WORTH_IT: return x->of[k].worth_it;
     case SURE_REGRET: return x->of[k].regret;
+    case SURE_P5:
+    case SURE_P50:
+    case SURE_P95: return x->of[k].net.at[kind - SURE_P5];
     default: return (struct sampled){x->moves.at[k].correlation, 0};
     }
 }

@@ -183,12 +183,13 @@ static void sure_columns(struct job *j, struct block *b)
     error_column(r, b, "regret", currency, STYLE_MONEY);
 }
 
-static void point_cell(struct job *j, struct row *row, const struct alternative *of,
-                       const struct sure_alternative *s, enum spread_point k)
+static void point_cell(struct job *j, struct row *row, const struct weighing *w,
+                       const struct alternative *of, const struct sure_alternative *s,
+                       enum spread_point k)
 {
-    const char *name =
-        of->net == FIGURE_NONE ? NULL : spread_name(j->figures, j->arena, of->net, k);
-    row_number(j->report, row, s->net.at[k].value, name);
+    enum sure_kind kind = (enum sure_kind)(SURE_P5 + k);
+    row_number(j->report, row, s->net.at[k].value,
+               of->n == 0 ? NULL : sure_name(j->arena, w, kind, of->name));
 }
 
 static void sure_row(struct job *j, struct block *b, const struct sure *x,
@@ -204,7 +205,7 @@ static void sure_row(struct job *j, struct block *b, const struct sure *x,
     else
         figure_cell(j, row, of->net);
     for (int k = 0; k < SPREAD_POINTS; k++)
-        point_cell(j, row, of, s, (enum spread_point)k);
+        point_cell(j, row, w, of, s, (enum spread_point)k);
     row_number(r, row, s->best.value, sure_name(j->arena, w, SURE_BEST, of->name));
     if (of->n == 0)
         row_empty(r, row);
@@ -353,9 +354,15 @@ static const char *net_words(struct job *j, const struct alternative *x)
     return x->net == FIGURE_NONE ? money(j, 0) : figure_name(j->figures, j->arena, x->net);
 }
 
+/* Is it a point of the net present value? */
+static bool is_point(const struct sure_value *v)
+{
+    return v->kind >= SURE_P5 && v->kind <= SURE_P95;
+}
+
 static bool is_money(const struct sure_value *v)
 {
-    return v->kind == SURE_REGRET;
+    return v->kind == SURE_REGRET || is_point(v);
 }
 
 static const char *value_words(struct job *j, const struct sure_value *v, double x)
@@ -363,6 +370,12 @@ static const char *value_words(struct job *j, const struct sure_value *v, double
     if (v->kind == SURE_MOVES)
         return plain_text(j, x);
     return is_money(v) ? money(j, x) : percent(j, x);
+}
+
+/* "5 %" */
+static const char *below_words(struct job *j, const struct sure_value *v)
+{
+    return percent(j, spread_probability[v->kind - SURE_P5]);
 }
 
 static const char *formula_of(struct job *j, const struct sure_value *v)
@@ -384,6 +397,11 @@ static const char *formula_of(struct job *j, const struct sure_value *v)
                             "mean over samples of: the greatest net present value of %s "
                             "- %s",
                             id, net_words(j, of));
+    case SURE_P5:
+    case SURE_P50:
+    case SURE_P95:
+        return arena_printf(j->arena, "%s point over samples of: %s", below_words(j, v),
+                            net_words(j, of));
     default:
         return arena_printf(j->arena, "rank correlation over samples of: %s; %s - %s", v->of,
                             net_words(j, x->best), net_words(j, x->next));
@@ -408,7 +426,7 @@ struct consumed sure_consumed(struct job *j, const struct sure_value *v)
             *array_push(j->arena, &c.inputs) = v->figure;
         add_net(j, &c, v->sure->best);
         add_net(j, &c, v->sure->next);
-    } else if (v->kind == SURE_WORTH_IT) {
+    } else if (v->kind == SURE_WORTH_IT || is_point(v)) {
         add_net(j, &c, alternative_named(w, v->of));
     } else {
         for (size_t i = 0; i < w->alternatives.n; i++)
@@ -431,9 +449,15 @@ static const char *meaning_of(struct job *j, const struct sure_value *v)
                             alternative_noun(of));
     case SURE_REGRET:
         return arena_printf(j->arena,
-                            "what is lost on average by deciding now for %s, against "
+                            "what is lost on average by deciding now %s, against "
                             "knowing everything",
-                            alternative_noun(of));
+                            of->n == 0 ? "to do nothing"
+                                       : arena_printf(j->arena, "for %s", of->name));
+    case SURE_P5:
+    case SURE_P50:
+    case SURE_P95:
+        return arena_printf(j->arena, "what %s is worth less than with a probability of %s",
+                            alternative_noun(of), below_words(j, v));
     default:
         return arena_printf(j->arena, "Spearman's rank correlation of %s with %s", v->of,
                             lead_words(j, v->sure));
