@@ -172,8 +172,10 @@ const struct command commands[] = {
      {"DECISION", 1, 1, "the decision, such as D-VH-BUS"},
      .options = READING | SAMPLING,
      .brief = "the options of a decision against doing nothing",
-     .text = "Weighs the options of a decision, and their combinations, against doing nothing, "
-             "over every hazard that one of them reaches.",
+     .text =
+         "Weighs the options of a decision, and their combinations, against doing nothing, "
+         "over every hazard that one of them reaches, and tells in how much of what is possible "
+         "each of them is best.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
     {"sensitivity",
@@ -193,8 +195,8 @@ const struct command commands[] = {
      .options = READING | SAMPLING,
      .brief = "one decision as a document to be signed",
      .text = "Prints what is asked, what is recommended, what it costs, what it avoids and for "
-             "whom, how often it ends badly, what it rests on with its sources, what would turn "
-             "it, what is not covered, and who signs.",
+             "whom, how often it ends badly, how sure that is, what it rests on with its sources, "
+             "what would turn it, what is not covered, and who signs.",
      .example = "ohmen -r skerry.ohmen memo D-TQ --width 80",
      .run = command_memo},
     {"test-interval",
