@@ -10,6 +10,8 @@
  * the others. */
 #include "graph/course_lanes.h"
 
+#include <string.h>
+
 /* Doubles of a vector, and vectors of a block: their chains of operations overlap. */
 #if defined __AVX512F__
 enum { WIDTH = 8 };
@@ -47,9 +49,9 @@ static const double GONE = 700;
 
 /* y (1 - y (1/2! - y (1/3! - ...))), from the last term on: within 1e-17 of it, relative, where y
  * is below 1/4, 1/64 and 1/1024. */
-static const double terms[] = {1.0 / 479001600, 1.0 / 39916800, 1.0 / 3628800, 1.0 / 362880,
-                               1.0 / 40320,     1.0 / 5040,     1.0 / 720,     1.0 / 120,
-                               1.0 / 24,        1.0 / 6,        0.5};
+static const double terms[] = {
+    1.0 / 479001600, 1.0 / 39916800, 1.0 / 3628800, 1.0 / 362880, 1.0 / 40320, 1.0 / 5040,
+    1.0 / 720,       1.0 / 120,      1.0 / 24,      1.0 / 6,      0.5};
 enum { TERMS = sizeof terms / sizeof *terms, FEW = TERMS - 6, FEWEST = TERMS - 4 };
 
 /* lost = the series at s part x, from a term on, doubled; x where it is needed clamped. */
@@ -70,20 +72,39 @@ static void clamp(struct decay *d)
     d->s = 1;
 }
 
+enum { MANTISSA = 52, ONE = 1023, QUARTER = ONE - 2 }; /* of a double's bits; exponents */
+
+/* How often `most` is to be halved until it is 1/4 or less: from its exponent, and whether it is
+ * more than that power of 2. */
+static int halvings(double most)
+{
+    uint64_t bits;
+    memcpy(&bits, &most, sizeof bits);
+    int above = (int)(bits >> MANTISSA) - QUARTER;
+    above += (bits << (64 - MANTISSA)) != 0;
+    return above > 0 ? above : 0;
+}
+
+static double halved(int times)
+{
+    uint64_t bits = (uint64_t)(ONE - times) << MANTISSA;
+    double part;
+    memcpy(&part, &bits, sizeof part);
+    return part;
+}
+
 /* `latest` is the greatest x. */
 static void decay_of(struct decay *d, double s, const double *x, double latest)
 {
     double most = s * latest;
     d->x = x;
     d->s = s;
-    d->part = 1;
-    d->doublings = 0;
     if (!(most < GONE)) {
         most = GONE;
         clamp(d);
     }
-    for (; most > 0.25; most /= 2, d->part /= 2)
-        d->doublings++;
+    d->doublings = halvings(most);
+    d->part = halved(d->doublings);
     d->first = most <= 0x1p-10 ? FEWEST : most <= 0x1p-6 ? FEW : 0;
 }
 
