@@ -128,7 +128,7 @@ static inline struct block lose(const struct decay *d, int begin, struct block *
 
 /* A part that holds at a time: its probability, and that of the contrary. */
 struct part {
-    struct block is, not ;
+    struct block is, is_not;
 };
 
 /* What follows du/dx = rate (1 - u) - ending u, from `start` where `on` is 1 and else from 0. */
@@ -160,7 +160,7 @@ static inline void rise_from_nothing(const struct rise *r, int begin, struct par
 {
     struct block left, lost = lose(&r->decay, begin, &left);
     EACH to->is.at[j] = r->grown * lost.at[j];
-    EACH to->not .at[j] = left.at[j] + r->ended * lost.at[j];
+    EACH to->is_not.at[j] = left.at[j] + r->ended * lost.at[j];
 }
 
 static inline void rise_from(const struct rise *r, int begin, const double *on, struct part *to)
@@ -168,7 +168,7 @@ static inline void rise_from(const struct rise *r, int begin, const double *on, 
     struct block left, lost = lose(&r->decay, begin, &left), start = load(on + begin);
     EACH start.at[j] = r->start * start.at[j];
     EACH to->is.at[j] = start.at[j] * left.at[j] + r->grown * lost.at[j];
-    EACH to->not .at[j] = (1 - start.at[j]) * left.at[j] + r->ended * lost.at[j];
+    EACH to->is_not.at[j] = (1 - start.at[j]) * left.at[j] + r->ended * lost.at[j];
 }
 
 static inline void rise_at(const struct rise *r, int begin, const double *on, struct part *to)
@@ -179,7 +179,7 @@ static inline void rise_at(const struct rise *r, int begin, const double *on, st
         rise_from(r, begin, on, to);
     else {
         EACH to->is.at[j] = (vector){0};
-        EACH to->not .at[j] = to->is.at[j] + 1;
+        EACH to->is_not.at[j] = to->is.at[j] + 1;
     }
 }
 
@@ -189,8 +189,8 @@ static inline void add_unreset(const struct rise *r, int begin, struct part *h)
     if (!r->exists)
         return;
     rise_from_nothing(r, begin, &m);
-    EACH h->is.at[j] = h->is.at[j] + m.is.at[j] * h->not .at[j];
-    EACH h->not .at[j] = h->not .at[j] * m.not .at[j];
+    EACH h->is.at[j] = h->is.at[j] + m.is.at[j] * h->is_not.at[j];
+    EACH h->is_not.at[j] = h->is_not.at[j] * m.is_not.at[j];
 }
 
 /* Adds a version that holds with the probability `weight`. */
@@ -203,13 +203,13 @@ static void add_version(double weight, const double x[COURSE_ARGS], const struct
     rise_of(&unreset, x[COURSE_UNRESET], x[COURSE_ENDING], 0, at->age, at->latest_age);
     for (int begin = 0; begin < LANES; begin += BLOCK) {
         struct part h;
-        struct block is = load(p + begin), not = load(q + begin);
+        struct block is = load(p + begin), is_not = load(q + begin);
         rise_at(&reset, begin, at->left, &h);
         add_unreset(&unreset, begin, &h);
         EACH is.at[j] = is.at[j] + (fixed + rest * h.is.at[j]);
-        EACH not .at[j] = not .at[j] + rest * h.not .at[j];
+        EACH is_not.at[j] = is_not.at[j] + rest * h.is_not.at[j];
         store(p + begin, &is);
-        store(q + begin, &not );
+        store(q + begin, &is_not);
     }
 }
 
