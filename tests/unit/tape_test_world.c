@@ -189,7 +189,7 @@ static double draw_lane_rate(struct random *r)
 
 struct tape_lanes tape_lanes_draw(struct tape_world *w, size_t n, size_t n_in)
 {
-    struct tape_lanes values = {.n = n, .n_in = n_in};
+    struct tape_lanes values = {.n = n, .n_in = n_in, .in = NEW_ARRAY(w->arena, n_in, double *)};
     for (size_t i = 0; i < n_in; i++) {
         bool is_rate = i >= TAPE_NUMBERS && i < TAPE_INPUTS;
         values.in[i] = NEW_ARRAY(w->arena, n + 3, double) + 1 + i % 2;
@@ -280,7 +280,7 @@ static void compare(struct checked *c, size_t begin, size_t n)
 /* `n` lanes from the first on, in blocks. */
 static void run_and_compare(struct checked *c, size_t n)
 {
-    const double *in[TAPE_INPUTS + 4];
+    const double **in = NEW_ARRAY(c->w->arena, c->values->n_in, const double *);
     for (size_t begin = 0; begin == 0 || begin < n; begin += c->block) {
         size_t count = n - begin < c->block ? n - begin : c->block;
         for (size_t i = 0; i < c->values->n_in; i++)
