@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Long sums of a tape in parts, each as soon as its terms are there: a sum over all hazards must
- * not keep the terms of all of them. What is carried from part to part is the sum and what rounding
- * has lost of it, so that the sum is what it was. Owns nothing. */
+/* Long sums of a tape in parts, each as soon as its terms are there: a sum over thousands of things
+ * must not keep the terms of all of them. What is carried from part to part is the sum and what
+ * rounding has lost of it, so that the sum is what it was. Owns nothing. */
 #include "eval/tape_kernels.h"
 
 /* Terms of a part; sums of fewer than twice as many stay whole. */
