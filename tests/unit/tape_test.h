@@ -32,6 +32,7 @@ node_id tape_world_add(struct tape_world *w, enum graph_op op);
 struct tape_lanes {
     size_t n, n_in;
     double **in;
+    bool at_once; /* run for all n only, not for smaller numbers of lanes */
 };
 struct tape_lanes tape_lanes_draw(struct tape_world *w, size_t n, size_t n_in);
 

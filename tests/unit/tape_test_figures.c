@@ -40,7 +40,7 @@ static void teardown(void)
 static struct tape_lanes draw_values(double low, double high)
 {
     size_t n = l.figures->inputs.n;
-    struct tape_lanes values = {FIGURE_LANES, n, NEW_ARRAY(w.arena, n, double *)};
+    struct tape_lanes values = {FIGURE_LANES, n, NEW_ARRAY(w.arena, n, double *), true};
     for (size_t i = 0; i < n; i++) {
         double mean = quantity_mean(l.figures->inputs.at[i]);
         values.in[i] = NEW_ARRAY(w.arena, FIGURE_LANES, double);

@@ -304,9 +304,11 @@ static void check_tape(struct checked *c, const struct tape_inputs *in, enum isa
     c->work = tape_work_new(w->arena, c->t, c->block);
     for (size_t k = 0; k < c->n_roots; k++)
         c->out[k] = NEW_ARRAY(w->arena, c->block + 2, double) + k % 2;
-    for (size_t i = 0; i < sizeof sizes / sizeof *sizes; i++)
+    for (size_t i = 0; !c->values->at_once && i < sizeof sizes / sizeof *sizes; i++)
         if (sizes[i] <= c->values->n)
             run_and_compare(c, sizes[i]);
+    if (c->values->at_once)
+        run_and_compare(c, c->values->n);
     c->block = asked;
 }
 
