@@ -22,3 +22,4 @@ trap 'exit 130' INT TERM
 "$build/tests/bench/diagrams" 10000
 "$build/tests/bench/protection" 10000 "$work"
 "$build/tests/bench/lanes" 1000000
+"$build/tests/bench/draws"

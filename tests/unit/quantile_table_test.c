@@ -217,7 +217,8 @@ START_TEST(standards)
     for (size_t i = 0; i < sizeof same / sizeof *same; i++) {
         struct quantile_standard one = quantile_standard(&same[i][0]);
         struct quantile_standard other = quantile_standard(&same[i][1]);
-        ck_assert_mem_eq(&one.dist, &other.dist, sizeof one.dist);
+        ck_assert_int_eq(one.dist.shape, other.dist.shape);
+        ck_assert_mem_eq(one.dist.p, other.dist.p, sizeof one.dist.p);
         for (int k = 0; k < 2; k++) {
             struct quantile_standard s = k == 0 ? one : other;
             double x = s.location + s.scale * dist_quantile(&s.dist, 0.238, 0.762);
