@@ -57,7 +57,7 @@ double math_pow(double x, double y)
     if (x == 1 || y == 0)
         return 1; /* even of NaN */
     if (isnan(x) || isnan(y))
-        return isnan(x) ? x + x : y + y; /* not x + y: which of two NaNs that is, is not said */
+        return isnan(x) ? x + x : y + y; /* of x + y compilers may take either NaN */
     if (x < 0 && isfinite(x) && isfinite(y) && !whole(y))
         return NAN;
     double size = fabs(x), sign = signbit(x) && odd(y) ? -1 : 1;

@@ -130,17 +130,11 @@ static inline real elementary_scale(real y, integer k)
     return y * elementary_power_of_two(half) * elementary_power_of_two(k - half);
 }
 
-/* x between low and high; x must not be NaN. */
+/* x between low and high; NaN becomes low. */
 static inline real elementary_clamp(real x, double low, double high)
 {
-    x = elementary_choose(x < low, elementary_every(low), x);
-    return elementary_choose(x > high, elementary_every(high), x);
-}
-
-/* The same, 0 for NaN. */
-static inline real elementary_clamp_number(real x, double low, double high)
-{
-    return elementary_clamp(elementary_choose(x == x, x, elementary_every(0)), low, high);
+    x = elementary_choose(x > low, x, elementary_every(low));
+    return elementary_choose(x < high, x, elementary_every(high));
 }
 
 /* exp(x + low) = 2^k (head + tail) exp(r + r_low). */
@@ -186,7 +180,7 @@ static inline struct elementary_pair elementary_exp_pair(struct elementary_reduc
 /* exp(x). NaN is led around the integers, and out again. */
 static inline real elementary_exp(real x)
 {
-    real inside = elementary_clamp_number(x, -750, 750);
+    real inside = elementary_clamp(x, -750, 750);
     struct elementary_reduced e = elementary_reduce(inside, elementary_every(0));
     real y = elementary_scale(elementary_exp_pair(e).head, e.k);
     return elementary_choose(x == x, y, x + x);
@@ -197,7 +191,7 @@ static inline real elementary_exp(real x)
  * the 1 does not matter, and the power is put on at the end. */
 static inline real elementary_expm1(real x)
 {
-    real inside = elementary_clamp_number(x, -60, 750);
+    real inside = elementary_clamp(x, -60, 750);
     struct elementary_reduced e = elementary_reduce(inside, elementary_every(0));
     integer beyond = elementary_mask(e.n >= 512 * ELEMENTARY_STEPS) & (e.k - 512);
     integer k = e.k - beyond;
@@ -266,8 +260,9 @@ static inline struct elementary_pair elementary_log_pair(struct elementary_split
 static inline real elementary_log_special(real x, real y)
 {
     real pole = elementary_every(-INFINITY), none = elementary_every(NAN);
-    return elementary_choose(x > 0, elementary_choose(x < INFINITY, y, x),
-                             elementary_choose(x == x, elementary_choose(x == 0, pole, none), x + x));
+    return elementary_choose(
+        x > 0, elementary_choose(x < INFINITY, y, x),
+        elementary_choose(x == x, elementary_choose(x == 0, pole, none), x + x));
 }
 
 static inline struct elementary_pair elementary_log_of(real x)

@@ -94,39 +94,45 @@ struct block {
     double tail[BLOCK]; /* the tails' `least`, then the size of the deviate */
 };
 
-static inline void block_centre(struct block *b, size_t i, real p, real q)
+static inline void take(struct block *b, size_t i, real p, real q)
 {
-    real least = elementary_choose(p <= q, p, q);
-    store(b->least + i, least);
+    store(b->least + i, elementary_choose(p <= q, p, q));
     store(b->side + i, elementary_choose(p <= q, elementary_every(1), elementary_every(-1)));
 }
 
-static void block_load(struct block *b, const double *p, const double *q)
+static void take_all(struct block *b, const double *p, const double *q)
 {
-    size_t i = 0;
-    for (; i + LANES <= b->n; i += LANES)
-        block_centre(b, i, load(p + i), load(q + i));
-    if (i < b->n)
-        block_centre(b, i, load_first(b->n - i, p + i), load_first(b->n - i, q + i));
+    size_t n = b->n, i = 0;
+    for (; i + LANES <= n; i += LANES)
+        take(b, i, load(p + i), load(q + i));
+    if (i < n)
+        take(b, i, load_first(n - i, p + i), load_first(n - i, q + i));
 }
 
-static void centre_of(struct block *b, double *z)
+static inline real centre_of(const struct block *b, size_t i)
 {
-    size_t i = 0;
-    for (; i + LANES <= b->n; i += LANES)
-        store(z + i, load(b->side + i) * normal_centre(load(b->least + i) - 0.5));
-    if (i < b->n)
-        store_first(b->n - i, z + i, load(b->side + i) * normal_centre(load(b->least + i) - 0.5));
+    return load(b->side + i) * normal_centre(load(b->least + i) - 0.5);
 }
 
+static void centre_all(const struct block *b, double *z)
+{
+    size_t n = b->n, i = 0;
+    for (; i + LANES <= n; i += LANES)
+        store(z + i, centre_of(b, i));
+    if (i < n)
+        store_first(n - i, z + i, centre_of(b, i));
+}
+
+/* Without a branch, which would be guessed wrong too often. */
 static void find_tails(struct block *b)
 {
-    b->tails = 0;
+    size_t tails = 0;
     for (size_t i = 0; i < b->n; i++) {
-        b->tail[b->tails] = b->least[i];
-        b->at[b->tails] = i;
-        b->tails += b->least[i] - 0.5 < -NORMAL_CENTRE;
+        b->tail[tails] = b->least[i];
+        b->at[tails] = i;
+        tails += b->least[i] - 0.5 < -NORMAL_CENTRE;
     }
+    b->tails = tails;
 }
 
 static inline real tail_of(real p)
@@ -137,7 +143,7 @@ static inline real tail_of(real p)
     return in_all(near) ? z : elementary_choose(near, z, normal_far_tail(root));
 }
 
-static void tails_of(struct block *b, double *z)
+static void tails_all(struct block *b, double *z)
 {
     for (size_t i = b->tails; i % LANES != 0; i++)
         b->tail[i] = 0.5;
@@ -152,10 +158,10 @@ static void deviate_all(size_t n, const double *p, const double *q, double *z)
     struct block b;
     for (size_t i = 0; i < n; i += b.n) {
         b.n = n - i < BLOCK ? n - i : BLOCK;
-        block_load(&b, p + i, q + i);
-        centre_of(&b, z + i);
+        take_all(&b, p + i, q + i);
+        centre_all(&b, z + i);
         find_tails(&b);
-        tails_of(&b, z + i);
+        tails_all(&b, z + i);
     }
 }
 

@@ -30,74 +30,24 @@ struct subject {
     struct range ranges[10];
 };
 
-#define ALL                                                                                        \
-    {0, INFINITY, BITS},                                                                           \
-    {                                                                                              \
-        -0.0, -INFINITY, BITS                                                                      \
-    }
+#define ALL {0, INFINITY, BITS}, {-0.0, -INFINITY, BITS}
 
 static const struct subject subjects[] = {
-    {"exp",
-     math_exp,
-     mpfr_exp,
-     0.52,
-     0.76,
-     {ALL,
-      {0x1p-60, 710, BITS},
-      {-0x1p-60, -746, BITS},
-      {-1, 1, EVEN},
-      {-745.2, -708, EVEN},
-      {709, 709.8, EVEN},
-      {-0.01, 0.01, EVEN}}},
-    {"expm1",
-     math_expm1,
-     mpfr_expm1,
-     0.52,
-     0.52,
-     {ALL,
-      {0x1p-60, 710, BITS},
-      {-0x1p-60, -60, BITS},
-      {-1, 1, EVEN},
-      {-45, 0, EVEN},
-      {709, 709.8, EVEN},
-      {-0.01, 0.01, EVEN},
-      {0, 60, EVEN}}},
-    {"log",
-     math_log,
-     mpfr_log,
-     0.52,
-     0.52,
-     {ALL,
-      {0.5, 2, EVEN},
-      {0.9, 1.1, EVEN},
-      {0.99, 1.01, EVEN},
-      {0, DBL_MIN, EVEN},
-      {1, 1.00001, EVEN},
-      {0.99999, 1, EVEN},
-      {1, 0x1.0000001p0, EVEN}}},
-    {"log1p",
-     math_log1p,
-     mpfr_log1p,
-     0.52,
-     0.52,
-     {ALL,
-      {0x1p-60, 1, BITS},
-      {-0x1p-60, -1, BITS},
-      {-1, 1, EVEN},
-      {-0.01, 0.01, EVEN},
-      {-1, -0.9999, EVEN},
-      {1, 0x1p60, BITS}}},
-    {"log10",
-     math_log10,
-     mpfr_log10,
-     0.52,
-     0.52,
+    {"exp", math_exp, mpfr_exp, 0.52, 0.76,
+     {ALL, {0x1p-60, 710, BITS}, {-0x1p-60, -746, BITS}, {-1, 1, EVEN}, {-745.2, -708, EVEN},
+      {709, 709.8, EVEN}, {-0.01, 0.01, EVEN}}},
+    {"expm1", math_expm1, mpfr_expm1, 0.52, 0.52,
+     {ALL, {0x1p-60, 710, BITS}, {-0x1p-60, -60, BITS}, {-1, 1, EVEN}, {-45, 0, EVEN},
+      {709, 709.8, EVEN}, {-0.01, 0.01, EVEN}, {0, 60, EVEN}}},
+    {"log", math_log, mpfr_log, 0.52, 0.52,
+     {ALL, {0.5, 2, EVEN}, {0.9, 1.1, EVEN}, {0.99, 1.01, EVEN}, {0, DBL_MIN, EVEN},
+      {1, 1.00001, EVEN}, {0.99999, 1, EVEN}, {1, 0x1.0000001p0, EVEN}}},
+    {"log1p", math_log1p, mpfr_log1p, 0.52, 0.52,
+     {ALL, {0x1p-60, 1, BITS}, {-0x1p-60, -1, BITS}, {-1, 1, EVEN}, {-0.01, 0.01, EVEN},
+      {-1, -0.9999, EVEN}, {1, 0x1p60, BITS}}},
+    {"log10", math_log10, mpfr_log10, 0.52, 0.52,
      {ALL, {0.5, 2, EVEN}, {0.9, 1.1, EVEN}, {0.99, 1.01, EVEN}, {0, DBL_MIN, EVEN}}},
-    {"erfc",
-     math_erfc,
-     mpfr_erfc,
-     1.5,
-     1.25,
+    {"erfc", math_erfc, mpfr_erfc, 1.5, 1.25,
      {ALL, {-6, 6, EVEN}, {0.4, 0.6, EVEN}, {0.5, 28, BITS}, {5, 28, EVEN}, {26, 27.5, EVEN}}},
 };
 
@@ -225,8 +175,8 @@ static void small_numbers(struct random *r, double *x, double *y)
 }
 
 static void (*const pairs[])(struct random *, double *, double *) = {
-    any_pair,      result_anywhere, result_subnormal, result_near_overflow,
-    base_near_one, result_near_one, whole_power,      small_numbers};
+    any_pair, result_anywhere, result_subnormal, result_near_overflow,
+    base_near_one, result_near_one, whole_power, small_numbers};
 
 START_TEST(pow_close_to_the_oracle)
 {
