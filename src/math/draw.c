@@ -137,6 +137,7 @@ static struct input input_of(const struct draw_input *in, const struct draw_plan
 ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
                        const struct draw_input *inputs, struct draws **out, ohmen_error *e)
 {
+    assert(p->log2_points >= DRAW_LEAST_LOG2 && p->log2_points <= DRAW_MOST_LOG2);
     struct draws *d = NEW(a, struct draws);
     struct quantile_edges *edges = NEW(a, struct quantile_edges);
     struct cache cache = cache_new(a, n);
