@@ -34,13 +34,13 @@ enum {
 static const char *const method_names[METHODS] = {"scrambled", "hypercube", "plain"};
 
 static const struct draw_input inputs[INPUTS] = {
-    {"gamma of shape 0.5", {DIST_GAMMA, {2e-2, 0.5}}, 1},
-    {"gamma of shape 1.24", {DIST_GAMMA, {2e-2, 1.24}}, 1},
-    {"gamma of shape 3.24", {DIST_GAMMA, {2e-2, 3.24}}, 1},
-    {"gamma of shape 20", {DIST_GAMMA, {2e-2, 20}}, 1},
-    {"lognormal, error factor 3", {DIST_LOGNORMAL, {1, 3, NAN}}, 1},
-    {"lognormal, error factor 5", {DIST_LOGNORMAL, {1, 5, NAN}}, 1},
-    {"lognormal, error factor 10", {DIST_LOGNORMAL, {1, 10, NAN}}, 1}};
+    {"gamma of shape 0.5", {DIST_GAMMA, {2e-2, 0.5}}, 1, 0},
+    {"gamma of shape 1.24", {DIST_GAMMA, {2e-2, 1.24}}, 1, 1},
+    {"gamma of shape 3.24", {DIST_GAMMA, {2e-2, 3.24}}, 1, 2},
+    {"gamma of shape 20", {DIST_GAMMA, {2e-2, 20}}, 1, 3},
+    {"lognormal, error factor 3", {DIST_LOGNORMAL, {1, 3, NAN}}, 1, 4},
+    {"lognormal, error factor 5", {DIST_LOGNORMAL, {1, 5, NAN}}, 1, 5},
+    {"lognormal, error factor 10", {DIST_LOGNORMAL, {1, 10, NAN}}, 1, 6}};
 
 static double x[INPUTS][POINTS]; /* as many inputs as the smooth function has */
 static_assert((int)INPUTS == (int)SMOOTH_INPUTS, "rows for all of them");
