@@ -128,8 +128,8 @@ static struct errors smooth_errors(enum draw_method method)
     return (struct errors){sqrt(squares[SEEDS / 2] / SETS), sqrt(sum / (SEEDS * SETS))};
 }
 
-/* Scrambled points are at least 5 times better than independent ones, in the middle of the seeds and
- * over all of them, and hypercubes 2.5 times. */
+/* Scrambled points are at least 5 times better than independent ones, in the middle of the seeds
+ * and over all of them, and hypercubes 2.5 times. */
 START_TEST(errors_of_a_mean)
 {
     struct errors plain = smooth_errors(DRAW_PLAIN), cube = smooth_errors(DRAW_HYPERCUBE),

@@ -210,8 +210,8 @@ static void check_lists(size_t place, int *linear)
 }
 
 /* How far a sampled mean may be off: six standard deviations of nearly as many independent points,
- * which scrambled ones may exceed in rare functions only (A. B. Owen, Annals of Statistics 25 (1997)
- * 1541, bounds the factor; from memory). Where sampled means are carried on, the printed error
+ * which scrambled ones may exceed in rare functions only (A. B. Owen, Annals of Statistics 25
+ * (1997) 1541, bounds the factor; from memory). Where sampled means are carried on, the printed error
  * counts, and a little for rare cases that no point of the sample met. */
 static double sample_tolerance(size_t place, double want)
 {

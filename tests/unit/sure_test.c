@@ -55,16 +55,17 @@ static void check_near(const char *what, struct sampled got, double want, double
  * or does not: expected 40, 48, 46; clairvoyance is worth 22. Here against the third one. */
 START_TEST(clairvoyance_in_a_published_case)
 {
-    static const char *const text = SETTINGS
-        "values: {X: {is: {values: {spared: {is: 0 EUR, p: 60 %}, struck: {is: 110 EUR, p: rest}}}}}\n"
-        "hazards: {H: {name: H, frequency: 1 per a, response: {never: {outcome: lost}}, "
-        "outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: X}}}}}}\n"
-        "options:\n"
-        "  A: {name: A, invest: 50 EUR, excludes: [B], change: {hazards: {H: {frequency: "
-        "0 * was}}}}\n"
-        "  B: {name: B, invest: 30 EUR, change: {hazards: {H: {frequency: 3 / 11 * "
-        "was}}}}\n"
-        "decisions: {D: {question: What?, options: [A, B]}}\n";
+    static const char *const text =
+        SETTINGS "values: {X: {is: {values: {spared: {is: 0 EUR, p: 60 %}, struck: {is: 110 EUR, "
+                 "p: rest}}}}}\n"
+                 "hazards: {H: {name: H, frequency: 1 per a, response: {never: {outcome: lost}}, "
+                 "outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: X}}}}}}\n"
+                 "options:\n"
+                 "  A: {name: A, invest: 50 EUR, excludes: [B], change: {hazards: {H: {frequency: "
+                 "0 * was}}}}\n"
+                 "  B: {name: B, invest: 30 EUR, change: {hazards: {H: {frequency: 3 / 11 * "
+                 "was}}}}\n"
+                 "decisions: {D: {question: What?, options: [A, B]}}\n";
     struct loaded l;
     struct sure x;
     struct sampling_plan p = sampling_defaults();
