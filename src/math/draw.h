@@ -24,8 +24,8 @@
  * names would have equal or opposite halves in every set: not to be had where they meet in a figure.
  *
  * Invariant: the values of an input in a set are decided by the seed, its name, its distribution,
- * its place, the method, the number of points and the number of the set, and by nothing else: not by
- * other inputs, the order in which anything is asked for, threads, or the instruction set. */
+ * its place, the method, the number of points and the number of the set, and by nothing else: not
+ * by other inputs, the order in which anything is asked for, threads, or the instruction set. */
 #ifndef MATH_DRAW_H
 #define MATH_DRAW_H
 

@@ -6,9 +6,12 @@
 #include <math.h>
 
 const struct draw_input smooth_inputs[SMOOTH_INPUTS] = {
-    {"rate", {DIST_GAMMA, {2e-2, 3.24}}, 1, 0},      {"first", {DIST_BETA, {2, 5}}, 1, 1},
-    {"second", {DIST_BETA, {3.5, 4}}, 1, 2},         {"repair", {DIST_LOGNORMAL, {40, 2, NAN}}, 1, 3},
-    {"supply", {DIST_GAMMA, {30, 1.6}}, 1, 4},       {"fine", {DIST_TRIANGULAR, {5, 20, 60}}, 1, 5},
+    {"rate", {DIST_GAMMA, {2e-2, 3.24}}, 1, 0},
+    {"first", {DIST_BETA, {2, 5}}, 1, 1},
+    {"second", {DIST_BETA, {3.5, 4}}, 1, 2},
+    {"repair", {DIST_LOGNORMAL, {40, 2, NAN}}, 1, 3},
+    {"supply", {DIST_GAMMA, {30, 1.6}}, 1, 4},
+    {"fine", {DIST_TRIANGULAR, {5, 20, 60}}, 1, 5},
     {"hours", {DIST_LOGNORMAL, {1, 1.6, NAN}}, 1, 6}};
 
 static double value(const double x[SMOOTH_INPUTS])
