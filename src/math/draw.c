@@ -301,9 +301,9 @@ static void nested_order(const struct draws *d, struct stream s, const struct ro
     d->kernels->nest(d->log2, bits, r->spare, r->place);
 }
 
-/* The strata of an input's points before they are scrambled. Groups behind the first one take the
- * points in another order in each set, which is nested, too, so that any 2^k of them that lie evenly
- * still do. */
+/* The strata of an input's points before they are scrambled. Groups behind the first one take
+ * the points in another order in each set, which is nested, too, so that any 2^k of them that lie
+ * evenly still do. */
 static const uint16_t *cells_of(const struct draws *d, const struct input *in, uint64_t set,
                                 const struct rows *r)
 {
