@@ -3,14 +3,15 @@
  *
  * In each sample (figure/samples.h) every alternative has a net present value against doing nothing
  * (doing nothing has 0), all in the same world. From these:
- *   probability of being best   share of the samples in which no other alternative is worth more
- *                               (of equals the one that the ranking puts first)
- *   probability of being worth it   share in which it is worth more than doing nothing
- *   expected regret             mean of (worth of the best alternative of the sample - its own): what
- *                               is lost on average by deciding now for it; of the alternative that is
- *                               chosen for its mean it is what knowing everything would be worth
- *                               (expected value of perfect information; Raiffa & Schlaifer, Applied
- *                               Statistical Decision Theory (1961), ch. 4, from memory)
+ *   probability of being best   share of the samples in which no other alternative is worth
+ *                               more (of equals the one that the ranking puts first)
+ *   probability of being worth it
+ *                               share in which it is worth more than doing nothing
+ *   expected regret             mean of (worth of the best alternative of the sample - its own):
+ *                               what is lost on average by deciding now for it; of the alternative
+ *                               that is chosen for its mean it is what knowing everything would be
+ *                               worth (expected value of perfect information; Raiffa & Schlaifer,
+ *                               Applied Statistical Decision Theory (1961), ch. 4, from memory)
  * each with its standard error over the sets of the sample.
  *
  * Names: DECISION.best[ALT], DECISION.worth-it[ALT], DECISION.regret[ALT]; and
