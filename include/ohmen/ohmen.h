@@ -119,10 +119,10 @@ typedef struct ohmen_query {
      * ohmen_explain where the figure comes from a sample. */
     unsigned samples;      /* values of each figure, in 16 independent sets at least: a power of 2
                               from 256 to 1048576, others are rounded up; 0: 1024 */
-    const char *precision; /* "0.5 %": stop as soon as the standard errors of the means of the worths
-                              are at most that part of the greatest of them; `samples` is the most
-                              then (0: 65536). NULL: all samples. OHMEN_USAGE for what is no part
-                              between 0 and 1 */
+    const char *precision; /* "0.5 %": stop as soon as the standard errors of the means of the
+                              worths are at most that part of the greatest of them; `samples` is
+                              the most then (0: 65536). NULL: all samples. OHMEN_USAGE for what is
+                              no part between 0 and 1 */
     unsigned seed;         /* another seed, other samples; 0: 1 */
     unsigned threads;      /* at most 64; 0: one for each processor. The same figures for any */
     const char *kernels;   /* the instructions to compute with, "plain", "wide" or "widest"; the

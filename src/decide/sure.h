@@ -32,8 +32,9 @@ struct sure_alternative {
 struct sure {
     const struct weighing *weighing;
     struct sampling_plan plan;
-    struct sampling sample;                /* root k: net present value of alternative k + 1 */
-    struct sure_alternative *of;           /* by alternative of the weighing */
+    struct sampling sample;      /* of the net present values, best in the ranking first */
+    size_t *root;                /* by alternative: which root; not of doing nothing */
+    struct sure_alternative *of; /* by alternative of the weighing */
     const struct alternative *best, *next; /* by mean; next NULL: there is one only */
     struct rank_inputs moves; /* of the difference of these two; without the weak ones */
 };

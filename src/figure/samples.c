@@ -24,23 +24,23 @@ static ohmen_status not_finite(struct figures *f, size_t n, const figure_id *ids
                      figure_name(f, f->arena, ids[k]));
 }
 
-static ohmen_status sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                           size_t n, const node_id *nodes, struct sampling *out, node_id *culprit,
-                           ohmen_error *e)
+static node_id *nodes_of(const struct figures *f, struct arena *a, size_t n, const figure_id *ids)
 {
-    struct sampler *s;
-    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, e);
-    return status == OHMEN_OK ? sampler_run(a, s, n, nodes, out, culprit, e) : status;
+    node_id *nodes = NEW_ARRAY(a, n, node_id);
+    for (size_t k = 0; k < n; k++)
+        nodes[k] = figure_at(f, ids[k])->node;
+    return nodes;
 }
 
 ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
                             size_t n, const figure_id *ids, struct sampling *out, ohmen_error *e)
 {
-    node_id culprit = NODE_NONE, *nodes = NEW_ARRAY(a, n, node_id);
+    node_id culprit = NODE_NONE, *nodes = nodes_of(f, a, n, ids);
     ohmen_error inner = OHMEN_ERROR_INIT;
-    for (size_t k = 0; k < n; k++)
-        nodes[k] = figure_at(f, ids[k])->node;
-    ohmen_status status = sample(f, a, p, n, nodes, out, &culprit, &inner);
+    struct sampler *s;
+    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, &inner);
+    if (status == OHMEN_OK)
+        status = sampler_run(a, s, n, nodes, out, &culprit, &inner);
     if (status == OHMEN_COMPUTE && culprit != NODE_NONE)
         return not_finite(f, n, ids, culprit, e);
     return status == OHMEN_OK ? OHMEN_OK : error_set(e, status, "%s", inner.text);
@@ -146,24 +146,34 @@ static bool is_listed(const struct rank_inputs *all, const char *name)
     return false;
 }
 
+static ohmen_status draw_again(struct figures *f, struct arena *a, const struct sampling_plan *p,
+                               size_t n, const node_id *nodes, size_t n_inputs,
+                               const node_id *inputs, struct sampling *out, ohmen_error *e)
+{
+    struct sampler *s;
+    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, e);
+    return status == OHMEN_OK ? sampler_run(a, s, n_inputs, inputs, out, NULL, e) : status;
+}
+
 ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          size_t n_below, const node_id *below, const double *values, size_t sets,
-                          double least, struct rank_inputs *out, ohmen_error *e)
+                          size_t n, const figure_id *ids, const struct sampling *of,
+                          const double *values, double least, struct rank_inputs *out,
+                          ohmen_error *e)
 {
     struct arena *scratch = arena_child(a);
     struct sampling_plan plan = *p;
     struct sampling drawn;
-    node_id *nodes;
-    size_t n = unknown_below(f, scratch, n_below, below, &nodes);
-    plan.most_batches = sets / SAMPLING_BATCH;
+    node_id *nodes = nodes_of(f, scratch, n, ids), *inputs;
+    size_t n_inputs = unknown_below(f, scratch, n, nodes, &inputs);
+    plan.most_batches = of->batches;
     plan.precision = 0;
     plan.watch = NULL;
-    ohmen_status status = sample(f, scratch, &plan, n, nodes, &drawn, NULL, e);
-    for (size_t i = 0; status == OHMEN_OK && i < n; i++) {
-        uint32_t input = graph_at(f->graph, nodes[i])->extra;
+    ohmen_status status = draw_again(f, scratch, &plan, n, nodes, n_inputs, inputs, &drawn, e);
+    for (size_t i = 0; status == OHMEN_OK && i < n_inputs; i++) {
+        uint32_t input = graph_at(f->graph, inputs[i])->extra;
         const char *name = f->input_names.at[input];
         double r =
-            statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
+            statistics_rank_correlation(scratch, of->sets * of->points, drawn.values[i], values);
         if (fabs(r) >= least && !is_listed(out, name))
             *array_push(a, out) = (struct rank_input){input, name, r};
     }

@@ -47,11 +47,13 @@ struct rank_input {
 };
 struct rank_inputs ARRAY_BODY(struct rank_input);
 
-/* Of the unknown inputs below some nodes those that move with `values`, which come from as many
- * sets of a sample by the same plan: by the size of Spearman's rank correlation, ties by name;
- * correlations smaller than `least` are left out. The inputs are drawn once more. Lives in `a`. */
+/* Of the unknown inputs of the figures of a sample those that move with `values`, one for each of
+ * its samples: by the size of Spearman's rank correlation, ties by name; correlations smaller than
+ * `least` are left out. The inputs are drawn once more, as they were for those figures: p and the
+ * figures are those of figures_sample. Lives in `a`. */
 ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          size_t n_below, const node_id *below, const double *values, size_t sets,
-                          double least, struct rank_inputs *out, ohmen_error *e);
+                          size_t n, const figure_id *ids, const struct sampling *of,
+                          const double *values, double least, struct rank_inputs *out,
+                          ohmen_error *e);
 
 #endif
