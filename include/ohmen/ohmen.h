@@ -194,6 +194,12 @@ ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,
 /* A decision: its options and their combinations weighed against doing nothing. */
 ohmen_status ohmen_weigh(ohmen_register *r, const ohmen_query *q, const char *decision,
                          ohmen_report **out, ohmen_error *e);
+/* How sure the answer to a decision is, and what it depends on: the sample of its alternatives,
+ * what each input swings, moves with and turns, and a map of the best alternative by two inputs.
+ * x, y: names of figures that documents state ("bus-fault.rate"), NULL: those with the widest
+ * swings. OHMEN_UNKNOWN with the nearest name for one that moves nothing in the decision. */
+ohmen_status ohmen_sensitivity(ohmen_register *r, const ohmen_query *q, const char *decision,
+                               const char *x, const char *y, ohmen_report **out, ohmen_error *e);
 /* The memo of one decision, to be attached to a request for money. */
 ohmen_status ohmen_memo(ohmen_register *r, const ohmen_query *q, const char *decision,
                         ohmen_report **out, ohmen_error *e);

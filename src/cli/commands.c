@@ -176,6 +176,17 @@ const struct command commands[] = {
              "over every hazard that one of them reaches.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
+    {"sensitivity",
+     JOB_DECIDE,
+     {"DECISION", 1, 1, "the decision, such as D-VH-DARK"},
+     .options = READING | SAMPLING | OPTION_BIT(OPTION_X) | OPTION_BIT(OPTION_Y),
+     .brief = "how sure the answer is, and what it depends on",
+     .text = "Prints in how much of what is possible each alternative of a decision is best, what "
+             "it costs on average to decide now rather than knowing everything, what each "
+             "unknown input swings, a map of the best alternative by two inputs (--x, --y), the "
+             "inputs that the answer moves with, elasticities, and what would turn it.",
+     .example = "ohmen -r skerry.ohmen sensitivity D-VH-DARK --width 80",
+     .run = command_sensitivity},
     {"memo",
      JOB_DECIDE,
      {"DECISION", 1, 1, "the decision, such as D-TQ"},

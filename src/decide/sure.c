@@ -8,9 +8,9 @@
 static const double LEAST_CORRELATION = 0.1;
 
 static const char *const kind_words[SURE_KINDS] = {
-    [SURE_BEST] = "best",
-    [SURE_WORTH_IT] = "worth-it",
-    [SURE_REGRET] = "regret",
+    [SURE_BEST] = "best",        [SURE_WORTH_IT] = "worth-it",
+    [SURE_REGRET] = "regret",    [SURE_P5] = "p5",
+    [SURE_P50] = "p50",          [SURE_P95] = "p95",
     [SURE_MOVES] = "moves-with",
 };
 
@@ -87,17 +87,29 @@ static size_t place_of(const struct weighing *w, const struct alternative *alt)
     return (size_t)(alt - w->alternatives.at);
 }
 
-static ohmen_status find_moves(struct figures *f, struct arena *a, struct sure *x,
-                               const figure_id *ids, ohmen_error *e)
+static node_id net_node(const struct figures *f, const struct alternative *alt)
+{
+    return figure_at(f, alt->net)->node;
+}
+
+/* `nets` are the figures of the sample. */
+static ohmen_status find_moves(struct figures *f, struct arena *a, const figure_id *nets,
+                               struct sure *x, ohmen_error *e)
 {
     const struct weighing *w = x->weighing;
-    size_t n = x->sample.sets * x->sample.points;
-    double *difference = NEW_ARRAY(a, n, double);
+    size_t n_values = x->sample.sets * x->sample.points, n = w->alternatives.n;
+    double *difference = NEW_ARRAY(a, n_values, double);
     if (!x->next)
         return OHMEN_OK;
-    for (size_t i = 0; i < n; i++)
+    for (size_t i = 0; i < n_values; i++)
         difference[i] = worth_of(x, place_of(w, x->best), i) - worth_of(x, place_of(w, x->next), i);
-    return figure_ranks(f, a, &x->plan, w->alternatives.n - 1, ids, &x->sample, difference,
+    node_id nodes[2];
+    size_t n_nodes = 0;
+    if (x->best->n)
+        nodes[n_nodes++] = net_node(f, x->best);
+    if (x->next->n)
+        nodes[n_nodes++] = net_node(f, x->next);
+    return figure_ranks(f, a, &x->plan, n - 1, nets, n_nodes, nodes, difference, x->sample.sets,
                         LEAST_CORRELATION, &x->moves, e);
 }
 
@@ -137,7 +149,7 @@ ohmen_status sure_find(struct figures *f, struct arena *a, const struct weighing
     for (size_t k = 1; k < n; k++)
         x.of[k].net = figure_spread_of(f, a, &x.sample, x.root[k], w->alternatives.at[k].net);
     count(a, &x);
-    status = find_moves(f, a, &x, ids, e);
+    status = find_moves(f, a, ids, &x, e);
     if (status == OHMEN_OK)
         *out = x;
     return status;
@@ -177,6 +189,9 @@ static struct sampled value_of(const struct sure *x, enum sure_kind kind, size_t
     case SURE_BEST: return x->of[k].best;
     case SURE_WORTH_IT: return x->of[k].worth_it;
     case SURE_REGRET: return x->of[k].regret;
+    case SURE_P5:
+    case SURE_P50:
+    case SURE_P95: return x->of[k].net.at[kind - SURE_P5];
     default: return (struct sampled){x->moves.at[k].correlation, 0};
     }
 }
@@ -192,14 +207,14 @@ static bool pick_value(struct figures *f, const struct sure *x, const char *name
         nearest_offer(near, known);
         if (!text_equal(known, name))
             continue;
-        *out = (struct sure_value){.name = known,
-                                   .kind = kind,
-                                   .weighing = w,
-                                   .of = of,
-                                   .value = value_of(x, kind, k),
-                                   .plan = x->plan,
-                                   .sets = x->sample.sets,
-                                   .points = x->sample.points};
+        *out =
+            (struct sure_value){.name = known,
+                                .kind = kind,
+                                .weighing = w,
+                                .of = of,
+                                .value = value_of(x, kind, k),
+                                .sure = x,
+                                .figure = kind == SURE_MOVES ? x->moves.at[k].figure : FIGURE_NONE};
         return true;
     }
     return false;
@@ -210,7 +225,7 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
 {
     struct weighing *w;
     struct nearest near;
-    struct sure x;
+    struct sure *x = NEW(f->arena, struct sure);
     enum sure_kind kind;
     const char *mark = find_mark(name, &kind);
     const char *decision = arena_strn(f->arena, name, (size_t)(mark - name));
@@ -220,11 +235,11 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
     if (status != OHMEN_OK)
         return status;
     weigh_rank(f, w);
-    status = sure_find(f, f->arena, w, plan, &x, e);
+    status = sure_find(f, f->arena, w, plan, x, e);
     if (status != OHMEN_OK)
         return status;
     nearest_init(&near, name);
-    if (pick_value(f, &x, name, kind, &near, out))
+    if (pick_value(f, x, name, kind, &near, out))
         return OHMEN_OK;
     return error_set(e, OHMEN_UNKNOWN, "the decision \"%s\" has no figure \"%s\"%s", w->id,
                      name + strlen(w->id) + 1, nearest_hint(f->arena, &near));

@@ -14,9 +14,11 @@
  *                               Applied Statistical Decision Theory (1961), ch. 4, from memory)
  * each with its standard error over the sets of the sample.
  *
- * Names: DECISION.best[ALT], DECISION.worth-it[ALT], DECISION.regret[ALT]; and
+ * Names: DECISION.best[ALT], DECISION.worth-it[ALT], DECISION.regret[ALT]; DECISION.p5[ALT],
+ * DECISION.p50[ALT] and DECISION.p95[ALT], the points of its net present value in this sample; and
  * DECISION.moves-with[INPUT], the rank correlation of an unknown input with what the best
- * alternative is worth beyond the next best. */
+ * alternative is worth beyond the next best. INPUT is the name of the input's figure, or of its
+ * stream where it has none ("H-1#0"). */
 #ifndef DECIDE_SURE_H
 #define DECIDE_SURE_H
 
@@ -45,15 +47,25 @@ ohmen_status sure_find(struct figures *f, struct arena *a, const struct weighing
                        const struct sampling_plan *plan, struct sure *out, ohmen_error *e);
 
 /* What a name of the above stands for. */
-enum sure_kind { SURE_BEST, SURE_WORTH_IT, SURE_REGRET, SURE_MOVES, SURE_KINDS };
+enum sure_kind {
+    SURE_BEST,
+    SURE_WORTH_IT,
+    SURE_REGRET,
+    SURE_P5, /* these in the order of spread_point */
+    SURE_P50,
+    SURE_P95,
+    SURE_MOVES,
+    SURE_KINDS
+};
+
 struct sure_value {
     const char *name;
     enum sure_kind kind;
     const struct weighing *weighing;
     const char *of; /* the alternative or the input */
     struct sampled value;
-    struct sampling_plan plan;
-    size_t sets, points;
+    const struct sure *sure; /* that it is of */
+    figure_id figure;        /* of an input, where it has one; else FIGURE_NONE */
 };
 
 /* "D-BUS.best[FIT-87B]" */

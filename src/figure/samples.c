@@ -48,14 +48,14 @@ ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sam
 
 /* ---- spreads ---- */
 
-static bool is_unknown(const struct figures *f, node_id n)
+bool figure_is_certain(const struct figures *f, figure_id id)
 {
     size_t count;
-    const uint32_t *inputs = graph_uncertain(f->graph, n, &count);
+    const uint32_t *inputs = graph_uncertain(f->graph, figure_at(f, id)->node, &count);
     for (size_t i = 0; i < count; i++)
         if (!f->input_varies.at[inputs[i]])
-            return true;
-    return false;
+            return false;
+    return true;
 }
 
 static struct figure_spread certain_spread(double x)
@@ -70,7 +70,7 @@ struct figure_spread figure_spread_of(const struct figures *f, struct arena *a,
                                       const struct sampling *s, size_t k, figure_id id)
 {
     struct figure_spread x = {0};
-    if (!is_unknown(f, figure_at(f, id)->node))
+    if (figure_is_certain(f, id))
         return certain_spread(figure_value(f, id));
     x.mean = statistics_mean(s->sets, s->points, s->values[k]);
     statistics_quantiles(a, s->sets, s->points, s->values[k], SPREAD_POINTS, spread_probability,
@@ -137,45 +137,96 @@ static size_t unknown_below(struct figures *f, struct arena *a, size_t n_below,
     return n;
 }
 
-/* The same unknown under several variants has several inputs of one name, with the same ranks. */
-static bool is_listed(const struct rank_inputs *all, const char *name)
+static const char *stream_of(const struct figures *f, node_id n)
 {
-    for (size_t i = 0; i < all->n; i++)
-        if (text_equal(all->at[i].name, name))
-            return true;
-    return false;
+    return f->input_names.at[graph_at(f->graph, n)->extra];
 }
 
+/* The first figure of the node; FIGURE_NONE. */
+static figure_id figure_of(const struct figures *f, node_id n)
+{
+    return n < f->of_node.n ? f->of_node.at[n] : FIGURE_NONE;
+}
+
+/* Fewer changes first, then by name. */
+static bool is_before(const struct figures *f, struct arena *a, figure_id p, figure_id q)
+{
+    size_t n = f->units.at[figure_at(f, p)->unit]->variant->n;
+    size_t m = f->units.at[figure_at(f, q)->unit]->variant->n;
+    return n != m ? n < m : text_compare(figure_name(f, a, p), figure_name(f, a, q)) < 0;
+}
+
+/* The same unknown under several variants has several inputs of one stream, with the same ranks:
+ * the one that stands for them. */
+struct streams {
+    const node_id *nodes;
+    size_t n;
+    struct strmap figures; /* stream -> figure_id of the most basic one, where there is one */
+    struct strmap told;    /* streams that are in the list */
+};
+
+static void find_streams(const struct figures *f, struct arena *a, struct streams *s)
+{
+    for (size_t i = 0; i < s->n; i++) {
+        const char *stream = stream_of(f, s->nodes[i]);
+        figure_id id = figure_of(f, s->nodes[i]);
+        figure_id *known = strmap_get(&s->figures, stream);
+        if (id == FIGURE_NONE || (known && !is_before(f, a, id, *known)))
+            continue;
+        figure_id *kept = NEW(a, figure_id);
+        *kept = id;
+        strmap_set(a, &s->figures, stream, kept);
+    }
+}
+
+static void add_rank(struct figures *f, struct arena *a, const struct streams *s, node_id n,
+                     double correlation, struct rank_inputs *out)
+{
+    const char *stream = stream_of(f, n);
+    const figure_id *known = strmap_get(&s->figures, stream);
+    *array_push(a, out) = (struct rank_input){
+        .input = graph_at(f->graph, n)->extra,
+        .name = known ? figure_name(f, a, *known) : stream,
+        .figure = known ? *known : FIGURE_NONE,
+        .correlation = correlation,
+    };
+}
+
+/* The inputs as they were drawn for a sample of n figures: each at its place among those of all. */
 static ohmen_status draw_again(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                               size_t n, const node_id *nodes, size_t n_inputs,
+                               size_t n, const figure_id *ids, size_t n_inputs,
                                const node_id *inputs, struct sampling *out, ohmen_error *e)
 {
     struct sampler *s;
-    ohmen_status status = sampler_new(a, f->means, p, n, nodes, &s, e);
+    ohmen_status status = sampler_new(a, f->means, p, n, nodes_of(f, a, n, ids), &s, e);
     return status == OHMEN_OK ? sampler_run(a, s, n_inputs, inputs, out, NULL, e) : status;
 }
 
 ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          size_t n, const figure_id *ids, const struct sampling *of,
-                          const double *values, double least, struct rank_inputs *out,
+                          size_t n, const figure_id *ids, size_t n_below, const node_id *below,
+                          const double *values, size_t sets, double least, struct rank_inputs *out,
                           ohmen_error *e)
 {
     struct arena *scratch = arena_child(a);
     struct sampling_plan plan = *p;
     struct sampling drawn;
-    node_id *nodes = nodes_of(f, scratch, n, ids), *inputs;
-    size_t n_inputs = unknown_below(f, scratch, n, nodes, &inputs);
-    plan.most_batches = of->batches;
+    node_id *nodes;
+    size_t n_inputs = unknown_below(f, scratch, n_below, below, &nodes);
+    struct streams streams = {.nodes = nodes, .n = n_inputs};
+    find_streams(f, scratch, &streams);
+    plan.most_batches = sets / SAMPLING_BATCH;
     plan.precision = 0;
     plan.watch = NULL;
-    ohmen_status status = draw_again(f, scratch, &plan, n, nodes, n_inputs, inputs, &drawn, e);
+    ohmen_status status = draw_again(f, scratch, &plan, n, ids, n_inputs, nodes, &drawn, e);
     for (size_t i = 0; status == OHMEN_OK && i < n_inputs; i++) {
-        uint32_t input = graph_at(f->graph, inputs[i])->extra;
-        const char *name = f->input_names.at[input];
+        const char *stream = stream_of(f, nodes[i]);
+        if (strmap_has(&streams.told, stream))
+            continue;
+        strmap_set(scratch, &streams.told, stream, (void *)stream);
         double r =
-            statistics_rank_correlation(scratch, of->sets * of->points, drawn.values[i], values);
-        if (fabs(r) >= least && !is_listed(out, name))
-            *array_push(a, out) = (struct rank_input){input, name, r};
+            statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
+        if (fabs(r) >= least)
+            add_rank(f, a, &streams, nodes[i], r, out);
     }
     if (out->n > 1)
         qsort(out->at, out->n, sizeof *out->at, by_size);

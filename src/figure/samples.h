@@ -29,6 +29,9 @@ struct figure_spread {
 ohmen_status figures_sample(struct figures *f, struct arena *a, const struct sampling_plan *p,
                             size_t n, const figure_id *ids, struct sampling *out, ohmen_error *e);
 
+/* Is nothing unknown in the figure? */
+bool figure_is_certain(const struct figures *f, figure_id id);
+
 /* The spread of figure k of a sample. */
 struct figure_spread figure_spread_of(const struct figures *f, struct arena *a,
                                       const struct sampling *s, size_t k, figure_id id);
@@ -42,18 +45,19 @@ const char *spread_name(const struct figures *f, struct arena *a, figure_id id,
 /* The unknown inputs of figures, by how their values rank with those of a figure. */
 struct rank_input {
     uint32_t input;   /* of the graph */
-    const char *name; /* of the stream (figures.input_names) */
+    const char *name; /* of its figure; of its stream (figures.input_names) where it has none */
+    figure_id figure; /* of the fewest changes among those of its stream; or FIGURE_NONE */
     double correlation;
 };
 struct rank_inputs ARRAY_BODY(struct rank_input);
 
-/* Of the unknown inputs of the figures of a sample those that move with `values`, one for each of
- * its samples: by the size of Spearman's rank correlation, ties by name; correlations smaller than
- * `least` are left out. The inputs are drawn once more, as they were for those figures: p and the
- * figures are those of figures_sample. Lives in `a`. */
+/* Of the unknown inputs below some of the figures of a sample those that move with `values`, which
+ * come from as many sets of that sample, of n figures by the same plan: by the size of Spearman's
+ * rank correlation, ties by name; correlations smaller than `least` are left out. The inputs are
+ * drawn once more. Lives in `a`. */
 ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampling_plan *p,
-                          size_t n, const figure_id *ids, const struct sampling *of,
-                          const double *values, double least, struct rank_inputs *out,
+                          size_t n, const figure_id *ids, size_t n_below, const node_id *below,
+                          const double *values, size_t sets, double least, struct rank_inputs *out,
                           ohmen_error *e);
 
 #endif
