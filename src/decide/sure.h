@@ -3,15 +3,15 @@
  *
  * In each sample (figure/samples.h) every alternative has a net present value against doing nothing
  * (doing nothing has 0), all in the same world. From these:
- *   probability of being best   share of the samples in which no other alternative is worth more
- *                               (of equals the one that the ranking puts first)
- *   probability of being worth it   share in which it is worth more than doing nothing
+ *   probability of being best   share of the samples in which no other alternative is worth
+ *                               more (of equals the one that the ranking puts first)
+ *   probability of being worth it
+ *                               share in which it is worth more than doing nothing
  *   expected regret             mean of (worth of the best alternative of the sample - its own):
  *                               what is lost on average by deciding now for it; of the alternative
  *                               that is chosen for its mean it is what knowing everything would be
- *                               worth
- *                               (expected value of perfect information; Raiffa & Schlaifer, Applied
- *                               Statistical Decision Theory (1961), ch. 4, from memory)
+ *                               worth (expected value of perfect information; Raiffa & Schlaifer,
+ *                               Applied Statistical Decision Theory (1961), ch. 4, from memory)
  * each with its standard error over the sets of the sample.
  *
  * Names: DECISION.best[ALT], DECISION.worth-it[ALT], DECISION.regret[ALT]; DECISION.p5[ALT],
@@ -34,8 +34,9 @@ struct sure_alternative {
 struct sure {
     const struct weighing *weighing;
     struct sampling_plan plan;
-    struct sampling sample;                /* root k: net present value of alternative k + 1 */
-    struct sure_alternative *of;           /* by alternative of the weighing */
+    struct sampling sample;      /* of the net present values, best in the ranking first */
+    size_t *root;                /* by alternative: which root; not of doing nothing */
+    struct sure_alternative *of; /* by alternative of the weighing */
     const struct alternative *best, *next; /* by mean; next NULL: there is one only */
     struct rank_inputs moves; /* of the difference of these two; without the weak ones */
 };
