@@ -20,7 +20,8 @@ enum {
 static bool watch(void *ctx, size_t batches, size_t most)
 {
     const struct job *j = ctx;
-    job_progress(j, "sampling", batches, most);
+    size_t all = j->sampled.all ? j->sampled.all : 1;
+    job_progress(j, "sampling", j->sampled.done * most + batches, all * most);
     return batches == 0 || !j->reg->stop || !j->reg->stop(j->reg->stop_ctx);
 }
 

@@ -61,6 +61,9 @@ struct job {
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
     struct sampling_plan plan;    /* of what is sampled: job_load_figures */
+    struct {
+        size_t done, all; /* samples of single figures, for who watches; all 0: there is one */
+    } sampled;
     struct strmap turns; /* decision -> struct turns, once they were asked for (turn.c) */
     struct ohmen_report *out;
     struct report *report; /* &out->report */
