@@ -58,6 +58,15 @@ ohmen_status spreads_compute(struct job *j, const struct hazards *h, const struc
                              ohmen_error *e);
 void part_spreads(struct job *j, const struct spreads_part *p);
 
+/* A point of a figure's spread: what it is, the sample that it is from, and the inputs that the
+ * figure moves with. Of an alternative's net present value it is that of the weighing. The
+ * figure is evaluated. OHMEN_COMPUTE as figures_sample, and for what has no single value. */
+ohmen_status part_spread_point(struct job *j, figure_id id, enum spread_point at, ohmen_error *e);
+/* OHMEN_UNKNOWN for the name of a point that there is not, such as H.risk[p90]. */
+ohmen_status spread_check(struct job *j, const char *name, ohmen_error *e);
+/* How to see the spread of a figure that is not certain. */
+void note_spread(struct job *j, figure_id id);
+
 /* supply.c: the unit of an index of supply, and its value in it. */
 const char *supply_unit(struct job *j, figure_id id, double *shown);
 
