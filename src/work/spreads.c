@@ -166,12 +166,18 @@ static ohmen_status sample_row(struct job *j, struct spreads_part *p, struct spr
 {
     ohmen_error why = OHMEN_ERROR_INIT;
     struct spread_samples all;
+    if (j->interrupted) {
+        p->n_interrupted++;
+        row->done = row->left_out = true;
+        return OHMEN_OK;
+    }
     struct arena *scratch = arena_child(j->arena);
     ohmen_status status = spreads_sample(j, scratch, row->sample.id, &all, &why);
     if (status == OHMEN_OK)
         keep(p, &all);
     arena_free(scratch);
     row->done = true;
+    row->left_out = status == OHMEN_COMPUTE;
     if (status == OHMEN_COMPUTE)
         row->why = arena_str(j->arena, why.text);
     else if (status != OHMEN_OK)
@@ -262,7 +268,7 @@ static const struct table_words {
 
 static bool has_spread(const struct spread_row *row)
 {
-    return !row->sample.spread.is_certain && !row->why;
+    return !row->sample.spread.is_certain && !row->left_out;
 }
 
 static void part_table(struct job *j, enum spreads_table table, const struct spread_rows *rows)
@@ -327,6 +333,12 @@ static void note_left_out(struct job *j, const struct spreads_part *p)
             if (p->tables[t].at[i].why)
                 report_note(j->report, arena_printf(j->arena, "spread-without-%d-%zu", t, i),
                             "Without a range: %s.", p->tables[t].at[i].why);
+    if (p->n_interrupted)
+        report_note(j->report, "spread-interrupted",
+                    "The sampling was interrupted before %s could be sampled: %s without a range "
+                    "here.",
+                    count_words(j->arena, p->n_interrupted, "figure", "figures"),
+                    p->n_interrupted > 1 ? "they are" : "it is");
 }
 
 void part_spreads(struct job *j, const struct spreads_part *p)

@@ -34,7 +34,8 @@ struct spread_row {
     const char *label;
     struct spread_sample sample;
     bool done;       /* sampled, certain, or left out */
-    const char *why; /* it is left out; or NULL */
+    bool left_out;   /* it has no sample: */
+    const char *why; /* NULL: it was not begun when the sampling was interrupted */
 };
 struct spread_rows ARRAY_BODY(struct spread_row);
 
@@ -47,6 +48,7 @@ enum spreads_table {
 };
 struct spreads_part {
     struct spread_rows tables[SPREADS_TABLES];
+    size_t n_interrupted;
     bool any;                     /* was anything sampled? */
     struct sampling fewest, most; /* batches; without their values */
 };

@@ -67,6 +67,7 @@ struct job {
     struct strmap turns; /* decision -> struct turns, once they were asked for (turn.c) */
     struct ohmen_report *out;
     struct report *report; /* &out->report */
+    bool interrupted;      /* the sampling, by who was asked whether to stop */
     bool keep_report;      /* the report goes out although the job fails */
 };
 
