@@ -315,7 +315,7 @@ static const char *lead_words(struct job *j, const struct sure *x)
                         alternative_noun(x->next));
 }
 
-void part_moves(struct job *j, const struct weighing *w)
+void part_sure_moves(struct job *j, const struct weighing *w)
 {
     const struct known_sure *known = w->alternatives.n < 2 ? NULL : sure_of(j, w);
     if (!known || !known->sure || known->sure->moves.n == 0)

@@ -63,11 +63,15 @@ struct job {
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
     struct sampling_plan plan;               /* of what is sampled: job_load_figures */
+    struct {
+        size_t done, all; /* samples of single figures, for who watches; all 0: there is one */
+    } sampled;
     /* By decision, once they were asked for: struct turns (turn.c), struct known_sure (sure.c),
      * struct known_swings (swings.c). */
     struct strmap turns, sures, swings;
     struct ohmen_report *out;
     struct report *report; /* &out->report */
+    bool interrupted;      /* the sampling, by who was asked whether to stop */
     bool keep_report;      /* the report goes out although the job fails */
 };
 
@@ -207,7 +211,7 @@ struct consumed turn_consumed(struct job *j, const struct turn *t);
 const char *sure_sentence(struct job *j, const struct weighing *w);
 void part_sure_table(struct job *j, const struct weighing *w);
 void part_sure(struct job *j, const struct weighing *w);
-void part_moves(struct job *j, const struct weighing *w);
+void part_sure_moves(struct job *j, const struct weighing *w);
 
 /* The derivation of one of these numbers. */
 void part_sure_head(struct job *j, const struct sure_value *v);
