@@ -42,12 +42,22 @@ const struct alternative *judged_alternative(const struct weighing *w)
     return w->alternatives.n > 1 ? &w->alternatives.at[w->order[1]] : NULL;
 }
 
+/* Those whose swing turns the decision, or the others. */
+static size_t add_inputs(const struct input_swings *all, bool turning, const char *out[2], size_t n)
+{
+    for (size_t i = 0; i < all->list.n && n < 2; i++) {
+        const struct input_swing *s = &all->list.at[i];
+        if (s->turns == turning && (turning || s->width > 0))
+            out[n++] = s->name;
+    }
+    return n;
+}
+
 void widest_inputs(struct job *j, const struct weighing *w, const char *out[2])
 {
     const struct known_swings *known = swings_of(j, w);
-    for (size_t i = 0; i < 2; i++)
-        if (!known->why && i < known->all.list.n && known->all.list.at[i].width > 0)
-            out[i] = known->all.list.at[i].name;
+    if (!known->why)
+        add_inputs(&known->all, false, out, add_inputs(&known->all, true, out, 0));
 }
 
 /* --- the picture --- */

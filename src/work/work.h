@@ -221,7 +221,8 @@ struct consumed sure_consumed(struct job *j, const struct sure_value *v);
 /* The alternative whose worth is looked at: the best one; where that is to do nothing the best
  * option, NULL where there is none (swings.c). */
 const struct alternative *judged_alternative(const struct weighing *w);
-/* The two inputs with the widest swings; those that there are not stay as they were. */
+/* The two inputs with the widest swings, first of those that turn the decision, then of the others;
+ * those that there are not stay as they were. */
 void widest_inputs(struct job *j, const struct weighing *w, const char *out[2]);
 /* What each unknown input swings, as a picture; elasticities, as a table. Of that alternative;
  * nothing where there is none. */
@@ -233,7 +234,7 @@ struct consumed swing_consumed(struct job *j, const struct swing_value *v);
 void part_elasticity_head(struct job *j, const struct elasticity *x);
 struct consumed elasticity_consumed(struct job *j, const struct elasticity *x);
 
-/* Which alternative is best by two inputs (NULL: those with the widest swings). OHMEN_UNKNOWN and
+/* Which alternative is best by two inputs (both NULL: widest_inputs). OHMEN_UNKNOWN and
  * OHMEN_COMPUTE, as map_find, only for inputs that were asked for (map.c). */
 ohmen_status part_map(struct job *j, const struct weighing *w, const char *x, const char *y,
                       ohmen_error *e);
