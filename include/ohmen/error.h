@@ -21,6 +21,7 @@
     X(IO, 7, "reading or writing failed")                                                 \
     X(COMPUTE, 8, "a figure cannot be computed from what the register holds")             \
     X(MEMORY, 9, "out of memory")                                                         \
+    X(INTERRUPTED, 10, "the sampling was interrupted; the report has what there was")     \
     X(INTERNAL, 70, "a programming error in ohmen")
 
 typedef enum ohmen_status {

@@ -55,13 +55,16 @@ ohmen_status ohmen_open(const char *path, ohmen_mode mode, ohmen_register **out,
 void ohmen_close(ohmen_register *r);
 
 /* Called now and then during long calls on a register, from the same thread: `done` of
- * `total` steps of a phase ("reading", "checking", "computing", "storing"). Must not call
+ * `total` steps of a phase ("reading", "checking", "computing", "sampling",
+ * "storing"). Must not call
  * the library. The time between two calls is not bounded. */
 typedef void ohmen_progress(void *ctx, const char *phase, size_t done, size_t total);
 void ohmen_watch(ohmen_register *r, ohmen_progress *progress, void *ctx);
 
 /* Asked between batches of samples (phase "sampling"): true ends the sampling there, at least one
- * batch being taken; the report then says how many. Must not call the library. */
+ * batch being taken. The call then returns OHMEN_INTERRUPTED, and a report as well (*out is set) that
+ * says how many batches there were, and which depends on nothing else of when it was interrupted.
+ * Must not call the library. */
 typedef bool ohmen_stop(void *ctx);
 void ohmen_stop_when(ohmen_register *r, ohmen_stop *stop, void *ctx);
 

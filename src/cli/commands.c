@@ -164,7 +164,9 @@ const struct command commands[] = {
      {0},
      .options = READING_HAZARDS | SAMPLING,
      .brief = "the whole register as one document",
-     .text = "Prints the whole register as one document.",
+     .text =
+         "Prints the whole register as one document. What its figures may be is sampled over all "
+         "that is unknown.",
      .example = "ohmen -r skerry.ohmen report --width 80",
      .run = command_report},
     {"weigh",
@@ -217,8 +219,12 @@ const struct command commands[] = {
      {"FIGURE", 1, 1, "the name of a figure, such as H-VH-BUS1.risk"},
      .options = READING | SAMPLING | OPTION_BIT(OPTION_DEPTH),
      .brief = "the derivation of a figure, down to its sources",
-     .text = "Takes one figure apart, formula by formula, down to inputs with their sources. "
-             "Figures carry their names in the output of --json.",
+     .text =
+         "Takes one figure apart, formula by formula, down to inputs with their sources. "
+         "Figures carry their names in the output of --json.\n"
+         "A point behind the name, as H-VH-BUS1.risk[p95], asks for what the figure may be: the "
+         "value below which it is with a probability of 95 % (p5, p50 and p95), by a sample over "
+         "all that is unknown, and the unknown inputs that the figure moves with.",
      .example = "ohmen -r skerry.ohmen explain H-VH-BUS1.risk --depth 2",
      .run = command_explain},
     {"history",

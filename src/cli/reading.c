@@ -5,6 +5,7 @@
 #include "cli/reading.h"
 
 #include "cli/locate.h"
+#include "cli/interrupt.h"
 #include "cli/message.h"
 #include "cli/output.h"
 #include "cli/progress.h"
@@ -31,6 +32,13 @@ ohmen_query reading_query(const struct args *args)
     return query;
 }
 
+/* An ohmen_progress; ctx is the progress line. */
+static void follow(void *ctx, const char *phase, size_t done, size_t total)
+{
+    interrupt_follow(phase, done, total);
+    progress_show(ctx, phase, done, total);
+}
+
 ohmen_status reading_open(const struct call *call, ohmen_mode mode, ohmen_register **out,
                           ohmen_error *e)
 {
@@ -39,8 +47,10 @@ ohmen_status reading_open(const struct call *call, ohmen_mode mode, ohmen_regist
     ohmen_status status = locate_register(call->args, found, &path, e);
     if (status == OHMEN_OK)
         status = ohmen_open(path, mode, out, e);
-    if (status == OHMEN_OK)
-        ohmen_watch(*out, progress_show, call->progress);
+    if (status == OHMEN_OK) {
+        ohmen_watch(*out, follow, call->progress);
+        ohmen_stop_when(*out, interrupt_asked, NULL);
+    }
     return status;
 }
 
@@ -72,6 +82,7 @@ static ohmen_status read_and_print(const struct call *call, maker *make, ohmen_e
     ohmen_status status = reading_open(call, OHMEN_READ, &reg, e);
     if (status == OHMEN_OK)
         status = make(reg, call->args, &report, e);
+    interrupt_end();
     progress_end(call->progress);
     if (report) {
         ohmen_status printed = reading_print(call, report, e);

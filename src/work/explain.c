@@ -3,7 +3,7 @@
  * worked out from figures and is none of the graph: values at which a decision turns, what it
  * leans on, swings, elasticities, and how sure it is. */
 #include "decide/interval.h"
-#include "work/work.h"
+#include "work/spreads.h"
 
 struct explaining {
     struct job *job;
@@ -268,6 +268,19 @@ static const struct worked_out *worked_out_named(const char *name)
     return NULL;
 }
 
+/* Compiled and evaluated. */
+static ohmen_status find_figure(struct job *j, const char *name, figure_id *id, bool *over_cycles,
+                                ohmen_error *e)
+{
+    ohmen_status status;
+    *over_cycles = interval_is_named(name);
+    if (*over_cycles)
+        status = interval_find(j->figures, name, &j->figures, id, e);
+    else
+        status = weigh_find(j->figures, name, id, e);
+    return status == OHMEN_OK ? figures_evaluate(j->figures, e) : status;
+}
+
 static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
 {
     const struct explain_request *q = ctx;
@@ -276,13 +289,15 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     const struct worked_out *other = worked_out_named(q->figure);
     if (status == OHMEN_OK && other)
         return other->explain(j, q, e);
-    bool over_cycles = interval_is_named(q->figure);
-    if (status == OHMEN_OK && over_cycles)
-        status = interval_find(j->figures, q->figure, &j->figures, &id, e);
-    else if (status == OHMEN_OK)
-        status = weigh_find(j->figures, q->figure, &id, e);
+    const char *figure = q->figure;
+    enum spread_point at;
+    bool over_cycles, is_point = spread_is_named(j->arena, q->figure, &figure, &at);
     if (status == OHMEN_OK)
-        status = figures_evaluate(j->figures, e);
+        status = spread_check(j, q->figure, e);
+    if (status == OHMEN_OK)
+        status = find_figure(j, figure, &id, &over_cycles, e);
+    if (status == OHMEN_OK && is_point)
+        status = part_spread_point(j, id, at, e);
     if (status != OHMEN_OK)
         return status;
     struct explaining x = {.job = j, .depth = q->depth};
@@ -296,6 +311,8 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     collect(&x);
     explain_table(&x, NULL);
     method_note(j, id);
+    if (!is_point)
+        note_spread(j, id);
     return OHMEN_OK;
 }
 

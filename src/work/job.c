@@ -146,6 +146,12 @@ static ohmen_status run_guarded(struct arena *a, ohmen_register *r, enum store_m
         status = store_open(a, r->path, mode, &j->store, e);
     if (status == OHMEN_OK)
         status = run(j, ctx, e);
+    if (status == OHMEN_OK && j->interrupted) {
+        j->keep_report = true;
+        status =
+            error_set(e, OHMEN_INTERRUPTED,
+                      "the sampling was interrupted: the report says how much of it there was");
+    }
     if (status == OHMEN_OK || j->keep_report)
         *out = j->out;
     return status;

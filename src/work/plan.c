@@ -19,9 +19,13 @@ enum {
 /* Between batches: tells whoever watches, and asks whether to go on. */
 static bool watch(void *ctx, size_t batches, size_t most)
 {
-    const struct job *j = ctx;
-    job_progress(j, "sampling", batches, most);
-    return batches == 0 || !j->reg->stop || !j->reg->stop(j->reg->stop_ctx);
+    struct job *j = ctx;
+    size_t all = j->sampled.all ? j->sampled.all : 1;
+    job_progress(j, "sampling", j->sampled.done * most + batches, all * most);
+    if (batches == 0 || !j->reg->stop || !j->reg->stop(j->reg->stop_ctx))
+        return true;
+    j->interrupted = j->interrupted || batches < most;
+    return false;
 }
 
 static unsigned log2_above(size_t n)

@@ -2,6 +2,7 @@
 /* The whole register as one document: title block, summary, hazards, grid, protection,
  * decisions, inputs with their sources, what is missing, what was left out, cautions. */
 #include "work/protection.h"
+#include "work/spreads.h"
 
 struct whole {
     struct hazards hazards;
@@ -9,6 +10,7 @@ struct whole {
     struct perspectives perspectives;
     struct supply_part supply;
     struct people_part people;
+    struct spreads_part spreads;
     ARRAY(struct weighing *) decisions;
 };
 
@@ -184,7 +186,11 @@ static ohmen_status compute_report(struct job *j, struct whole *w, ohmen_error *
         status = job_compile_hazards(j, &w->hazards, e);
     if (status == OHMEN_OK)
         status = compile_chapters(j, w, e);
-    return status == OHMEN_OK ? figures_evaluate(j->figures, e) : status;
+    if (status == OHMEN_OK)
+        status = figures_evaluate(j->figures, e);
+    return status == OHMEN_OK
+               ? spreads_compute(j, &w->hazards, &w->supply, &w->people, &w->spreads, e)
+               : status;
 }
 
 static void chapter_hazards(struct job *j, const struct whole *w)
@@ -222,6 +228,8 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
     part_not_computed(j);
     chapter_hazards(j, &w);
     chapters_of_effects(j, &w);
+    report_heading(j->report, 2, "How sure the figures are");
+    part_spreads(j, &w.spreads);
     report_heading(j->report, 2, "What protection hinges on");
     part_protection(j, &w.protection, 3);
     part_decisions(j, &w);

@@ -3,7 +3,7 @@
  * each site; the chapter of the report, and the command that prints it alone. Owns nothing. */
 #include <stdlib.h>
 
-#include "work/work.h"
+#include "work/spreads.h"
 
 /* Rows of the table of hazards. */
 enum { MOST_INTERRUPTING = 15 };
@@ -79,7 +79,7 @@ static const struct index_row {
 };
 
 /* "1/a" of what is counted in a year has no unit of its own. */
-static const char *index_unit(struct job *j, figure_id id, double *shown)
+const char *supply_unit(struct job *j, figure_id id, double *shown)
 {
     const char *unit = figure_display(j, id, shown);
     enum property p = figure_at(j->figures, id)->property;
@@ -91,7 +91,7 @@ static const char *index_unit(struct job *j, figure_id id, double *shown)
 static void index_row(struct job *j, struct block *b, const struct index_row *x, figure_id id)
 {
     double shown;
-    const char *unit = index_unit(j, id, &shown);
+    const char *unit = supply_unit(j, id, &shown);
     struct row *row = block_row(j->report, b);
     row_text(j->report, row, x->key);
     row_text(j->report, row, x->meaning);

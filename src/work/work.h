@@ -63,11 +63,15 @@ struct job {
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
     struct sampling_plan plan;               /* of what is sampled: job_load_figures */
+    struct {
+        size_t done, all; /* samples of single figures, for who watches; all 0: there is one */
+    } sampled;
     /* By decision, once they were asked for: struct turns (turn.c), struct known_sure (sure.c),
      * struct known_swings (swings.c). */
     struct strmap turns, sures, swings;
     struct ohmen_report *out;
     struct report *report; /* &out->report */
+    bool interrupted;      /* the sampling, by who was asked whether to stop */
     bool keep_report;      /* the report goes out although the job fails */
 };
 

@@ -1,7 +1,8 @@
 #!/bin/sh
 # SPDX-License-Identifier: GPL-3.0-or-later
 # One register, one output: the bytes that ohmen prints do not depend on the locale, the
-# time zone, the width of the machine's instructions, or the compiler that built it.
+# time zone, the threads and kernels that compute it, the width of the machine's instructions, or the
+# compiler that built it.
 #
 #   OHMEN=path/to/ohmen [OTHER=path/to/another/ohmen] tests/tools/bytes.sh
 #
@@ -54,6 +55,7 @@ list options --where site=VH --sort invest --csv
 gaps --json
 explain H-VH-BUS1.risk --json
 explain H-TQ-BUS.risk --csv
+explain H-VH-T2.risk[p95] --json
 history --json
 history H-VH-BUS1 --ascii
 verify --json
@@ -64,6 +66,11 @@ help --markdown'
 unicode='hazards --width 120
 weigh D-GU
 explain H-GU-CABLE.risk'
+
+# What is sampled, which threads and kernels have to give the same of. Options are put behind.
+sampled='memo D-VH-DARK --json --seed 7
+explain H-TQ-SHORE.damaging[p5] --json --samples 4096
+explain H-VH-DUCT.risk[p50] --json'
 
 complain()
 {
@@ -146,6 +153,44 @@ run "$unicode" first unicode "$ohmen"
 narrow=glibc.cpu.hwcaps=-AVX512F,-AVX512VL,-AVX512BW,-AVX512DQ,-AVX512CD,-AVX2,-AVX,-FMA
 narrow=$narrow,-FMA4,-BMI1,-BMI2,-LZCNT,-MOVBE,-SSE4_2,-SSE4_1,-SSSE3,-ERMS
 
+# with OPTION...: sampled commands with these options, and their comparison.
+with()
+{
+    list=
+    while IFS= read -r line; do
+        list="$list$line $*
+"
+    done <<EOT
+$sampled
+EOT
+    list=${list%?}
+    run "$list" first again "$ohmen"
+    compare "$list" sampled again 'with other threads or kernels'
+}
+
+# Does the processor have what these kernels need? The tool knows.
+has()
+{
+    plain env OHMEN_REGISTER="$work/first/r.ohmen" "$ohmen" explain H-VH-DARK.damaging \
+        --depth 1 --kernels "$1" >/dev/null 2>"$work/kernels"
+}
+
+by_threads_and_kernels()
+{
+    run "$sampled" first sampled "$ohmen"
+    with --threads 1
+    with --threads 2
+    for kernels in plain wide widest; do
+        if has "$kernels"; then
+            with --threads 2 --kernels "$kernels"
+        elif grep -q 'this processor' "$work/kernels"; then
+            echo "Not compared: this processor has not what the kernels \"$kernels\" need."
+        else
+            complain "the kernels \"$kernels\" do not run: $(cat "$work/kernels")"
+        fi
+    done
+}
+
 in_locales()
 {
     for locale in C de_DE.UTF-8 tr_TR.UTF-8; do
@@ -185,6 +230,7 @@ by_other()
 if [ -n "$other" ]; then
     by_other
 else
+    by_threads_and_kernels
     in_locales
     elsewhere
 fi

@@ -9,6 +9,7 @@
 #include <string.h>
 
 #include "base/text.h"
+#include "figure/samples.h"
 #include "formula_all.h"
 #include "json_check.h"
 #include "loaded.h"
@@ -27,7 +28,7 @@ struct checking_all {
     ohmen_register *reg;
     struct loaded loaded; /* for the titles of sources */
     struct strmap rows;   /* figure -> struct derived */
-    size_t reported, formulas, means, literals, sourced;
+    size_t reported, formulas, means, literals, sourced, points;
 };
 
 static void must(ohmen_status status, const ohmen_error *e)
@@ -138,6 +139,47 @@ static void explain(struct checking_all *c, const char *name)
     ck_assert_msg(strmap_has(&c->rows, name), "%s is not in its own derivation", name);
 }
 
+/* The texts at "value" and "unit" of a number before its figure's name in the report. */
+static bool number_before(struct arena *a, const char *figure, const char **value,
+                          const char **unit)
+{
+    static const char head[] = "{\"value\": ", middle[] = ", \"unit\": \"";
+    const char *at = figure;
+    while (*at != '{')
+        at--;
+    if (!text_starts(at, head))
+        return false;
+    size_t n = strcspn(at + sizeof head - 1, ",");
+    *value = arena_strn(a, at + sizeof head - 1, n);
+    at += sizeof head - 1 + n;
+    if (!text_starts(at, middle))
+        return false;
+    *unit = arena_strn(a, at + sizeof middle - 1, strcspn(at + sizeof middle - 1, "\""));
+    return true;
+}
+
+/* A point of a spread has no formula: it stands in a table of points, with the digits of the report
+ * where that has it in base units. */
+static void explain_point(struct checking_all *c, const char *name, const char *in_report)
+{
+    ohmen_report *report = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    const char *value, *unit;
+    must(ohmen_explain(c->reg, NULL, name, 1, &report, &e), &e);
+    const char *json = ohmen_report_json(report);
+    const char *row = strstr(json, arena_printf(c->arena, "\"figure\": \"%s\"", name));
+    ck_assert_msg(row != NULL, "%s is not among its own points", name);
+    while (*row != '{')
+        row--;
+    row = row_object(c->arena, row, strcspn(row, "\n"));
+    ck_assert(number_before(c->arena, in_report, &value, &unit));
+    if (text_equal(text_at(c->arena, row, "unit"), unit)) {
+        ck_assert_str_eq(text_at(c->arena, row, "exact"), value);
+        c->points++;
+    }
+    ohmen_report_free(report);
+}
+
 /* Every figure that the report of all names, explained to the ground. */
 static void explain_all(struct checking_all *c)
 {
@@ -145,6 +187,8 @@ static void explain_all(struct checking_all *c)
     ohmen_report *report = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
     struct strmap seen = {0};
+    const char *figure;
+    enum spread_point point;
     must(ohmen_report_all(c->reg, NULL, &report, &e), &e);
     for (const char *at = ohmen_report_json(report); (at = strstr(at, key)) != NULL;) {
         at += sizeof key - 1;
@@ -152,7 +196,10 @@ static void explain_all(struct checking_all *c)
         if (strmap_has(&seen, name))
             continue;
         strmap_set(c->arena, &seen, name, NULL);
-        explain(c, name);
+        if (spread_is_named(c->arena, name, &figure, &point))
+            explain_point(c, name, at);
+        else
+            explain(c, name);
     }
     c->reported = seen.n;
     ohmen_report_free(report);
@@ -296,6 +343,7 @@ START_TEST(formulas_of_the_report)
     ck_assert_uint_gt(c.means, 5);
     ck_assert_uint_gt(c.literals, 10);
     ck_assert_uint_gt(c.sourced, 5);
+    ck_assert_uint_gt(c.points, 10);
     ohmen_close(c.reg);
     arena_free(a);
 }

@@ -31,10 +31,10 @@ static struct sampling sample_of(struct loaded *l, const struct sampling_plan *p
 
 /* ---- what moves with a figure ---- */
 
-/* A frequency that is the product of ten unknown values. That of the last name is by far the widest,
- * so that the frequency rises with it nearly always: with log x = s z and T the sum of the squares of
- * all s, Pearson's correlation of the logarithms is s / sqrt(T) = .9907, and Spearman's of a bivariate
- * normal 6 / pi asin(.9907 / 2) = .9898 (Kendall & Gibbons, ch. 10, from memory). */
+/* A frequency that is the product of ten unknown values. That of the last name is by far the
+ * widest, so that the frequency rises with it nearly always: with log x = s z and T the sum of the
+ * squares of all s, Pearson's correlation of the logarithms is s / sqrt(T) = .9907, and Spearman's
+ * of a bivariate normal 6 / pi asin(.9907 / 2) = .9897 (Kendall & Gibbons, ch. 10, from memory). */
 #define NARROW(name) name ": {is: {median: 1, error-factor: 1.1}}, "
 static const char product[] =
     "register: {title: T, currency: EUR, prices: 2026, horizon: 1 a, discount: 0 % per a}\n"
@@ -75,10 +75,10 @@ END_TEST
 
 /* ---- means ---- */
 
-/* Batches of 16 sets; standard errors that a mean may be away, which of some thousand figures hardly
- * one is by chance (Student's t with 31 degrees of freedom: 2e-5); what is allowed where nothing
- * unknown is in a figure, and where something varies, which samples average over by rules of fixed
- * steps: coarse where the figure has a kink. */
+/* Batches of 16 sets; standard errors that a mean may be away, which of some thousand figures
+ * hardly one is by chance (Student's t with 31 degrees of freedom: 2e-5); what is allowed where
+ * nothing unknown is in a figure, and where something varies, which samples average over by rules
+ * of fixed steps: coarse where the figure has a kink. */
 enum { BATCHES = 2, MOST_ERRORS = 5 };
 static const double EXACTLY = 1e-9, BY_STEPS = 1e-3;
 static const char *root_folder;
