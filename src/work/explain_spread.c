@@ -13,6 +13,7 @@ static const double LEAST_CORRELATION = 0.1;
 /* A figure's sample, with those of figures that were sampled together with it. */
 struct sampled_figure {
     figure_id id;
+    bool is_net;
     size_t n; /* figures of the sample */
     const figure_id *ids;
     struct sampling sampling;
@@ -33,6 +34,7 @@ static ohmen_status sample_net(struct job *j, struct weighing *w, struct sampled
     if (status != OHMEN_OK)
         return status;
     figure_id *ids = NEW_ARRAY(j->arena, w->alternatives.n, figure_id);
+    x->is_net = true;
     x->plan = sure.plan;
     x->sampling = sure.sample;
     x->ids = ids;
@@ -115,7 +117,7 @@ static const char *together_words(struct job *j, const struct sampled_figure *x)
     struct text names;
     size_t n = 0;
     text_init(&names, j->arena);
-    if (x->n > MOST_TOGETHER)
+    if (x->is_net)
         return " Sampled together with the other alternatives.";
     for (size_t k = 0; k < x->n; k++)
         if (x->ids[k] != x->id)
@@ -237,6 +239,17 @@ ohmen_status part_spread_point(struct job *j, figure_id id, enum spread_point at
     points_table(j, &x);
     note_sample(j, &x);
     return part_moves(j, &x, e);
+}
+
+ohmen_status spread_prepare(struct job *j, const char *figure, ohmen_error *e)
+{
+    struct hazards all = {0};
+    const char *id = arena_strn(j->arena, figure, strcspn(figure, "."));
+    const struct object *o = model_find(j->model, id);
+    if (!o || (o->kind != KIND_REGISTER && o->kind != KIND_GROUP))
+        return OHMEN_OK;
+    ohmen_status status = job_compile_hazards(j, &all, e);
+    return status == OHMEN_OK ? spreads_compile(j, &all, e) : status;
 }
 
 /* "H.risk[p90]" is no figure, and no point either. */
