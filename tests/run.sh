@@ -3,8 +3,8 @@
 # Builds ohmen and runs every test; the last line is "N passed, N failed".
 #
 #   tests/run.sh          with gcc
-#   tests/run.sh --all    with gcc and clang, each also with the address and the
-#                         undefined-behaviour sanitizer
+#   tests/run.sh --all    with gcc, with clang, and with clang and both sanitizers: address and
+#                         undefined behaviour
 #
 # Counts single cases: the checks of a Check program, one for any other test.
 # A failed build, a test that ran nothing and a suite without tests are failures.
@@ -163,9 +163,7 @@ if [ $all = yes ]; then
     job clang clang 1
     compare gcc clang
     # shellcheck disable=SC2086
-    job gcc-sanitize gcc 4 $sanitize
-    # shellcheck disable=SC2086
-    job clang-sanitize clang 4 $sanitize
+    job sanitize clang 4 $sanitize
 fi
 for suite in $suites; do
     case $seen in

@@ -122,10 +122,10 @@ typedef struct ohmen_query {
      * ohmen_explain where the figure comes from a sample. */
     unsigned samples;      /* values of each figure, in 16 independent sets at least: a power of 2
                               from 256 to 1048576, others are rounded up; 0: 1024 */
-    const char *precision; /* "0.5 %": stop as soon as the standard errors of the means of the worths
-                              are at most that part of the greatest of them; `samples` is the most
-                              then (0: 65536). NULL: all samples. OHMEN_USAGE for what is no part
-                              between 0 and 1 */
+    const char *precision; /* "0.5 %": stop as soon as the standard errors of the means of the
+                              worths are at most that part of the greatest of them; `samples` is
+                              the most then (0: 65536). NULL: all samples. OHMEN_USAGE for what is
+                              no part between 0 and 1 */
     unsigned seed;         /* another seed, other samples; 0: 1 */
     unsigned threads;      /* at most 64; 0: one for each processor. The same figures for any */
     const char *kernels;   /* the instructions to compute with, "plain", "wide" or "widest"; the
@@ -197,6 +197,12 @@ ohmen_status ohmen_show(ohmen_register *r, const ohmen_query *q, const char *id,
 /* A decision: its options and their combinations weighed against doing nothing. */
 ohmen_status ohmen_weigh(ohmen_register *r, const ohmen_query *q, const char *decision,
                          ohmen_report **out, ohmen_error *e);
+/* How sure the answer to a decision is, and what it depends on: the sample of its alternatives,
+ * what each input swings, moves with and turns, and a map of the best alternative by two inputs.
+ * x, y: names of figures that documents state ("bus-fault.rate"), NULL: those with the widest
+ * swings. OHMEN_UNKNOWN with the nearest name for one that moves nothing in the decision. */
+ohmen_status ohmen_sensitivity(ohmen_register *r, const ohmen_query *q, const char *decision,
+                               const char *x, const char *y, ohmen_report **out, ohmen_error *e);
 /* The memo of one decision, to be attached to a request for money. */
 ohmen_status ohmen_memo(ohmen_register *r, const ohmen_query *q, const char *decision,
                         ohmen_report **out, ohmen_error *e);

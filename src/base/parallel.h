@@ -2,7 +2,7 @@
 /* A loop over several threads.
  *
  * Steps are taken in rising order by whichever thread is free, so they must not depend on one
- * another, nor on which thread takes them: then the outcome does not depend on their number. */
+ * another, nor on which thread takes them: then the result does not depend on their number. */
 #ifndef BASE_PARALLEL_H
 #define BASE_PARALLEL_H
 

@@ -174,18 +174,31 @@ const struct command commands[] = {
      {"DECISION", 1, 1, "the decision, such as D-VH-BUS"},
      .options = READING | SAMPLING,
      .brief = "the options of a decision against doing nothing",
-     .text = "Weighs the options of a decision, and their combinations, against doing nothing, "
-             "over every hazard that one of them reaches.",
+     .text =
+         "Weighs the options of a decision, and their combinations, against doing nothing, "
+         "over every hazard that one of them reaches, and tells in how much of what is possible "
+         "each of them is best.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
+    {"sensitivity",
+     JOB_DECIDE,
+     {"DECISION", 1, 1, "the decision, such as D-VH-DARK"},
+     .options = READING | SAMPLING | OPTION_BIT(OPTION_X) | OPTION_BIT(OPTION_Y),
+     .brief = "how sure the answer is, and what it depends on",
+     .text = "Prints in how much of what is possible each alternative of a decision is best, what "
+             "it costs on average to decide now rather than knowing everything, what each "
+             "unknown input swings, a map of the best alternative by two inputs (--x, --y), the "
+             "inputs that the answer moves with, elasticities, and what would turn it.",
+     .example = "ohmen -r skerry.ohmen sensitivity D-VH-DARK --width 80",
+     .run = command_sensitivity},
     {"memo",
      JOB_DECIDE,
      {"DECISION", 1, 1, "the decision, such as D-TQ"},
      .options = READING | SAMPLING,
      .brief = "one decision as a document to be signed",
      .text = "Prints what is asked, what is recommended, what it costs, what it avoids and for "
-             "whom, how often it ends badly, what it rests on with its sources, what would turn "
-             "it, what is not covered, and who signs.",
+             "whom, how often it ends badly, how sure that is, what it rests on with its sources, "
+             "what would turn it, what is not covered, and who signs.",
      .example = "ohmen -r skerry.ohmen memo D-TQ --width 80",
      .run = command_memo},
     {"test-interval",

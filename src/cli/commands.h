@@ -64,6 +64,7 @@ ohmen_status command_show(const struct call *call, ohmen_error *e);
 ohmen_status command_grid(const struct call *call, ohmen_error *e);
 ohmen_status command_report(const struct call *call, ohmen_error *e);
 ohmen_status command_weigh(const struct call *call, ohmen_error *e);
+ohmen_status command_sensitivity(const struct call *call, ohmen_error *e);
 ohmen_status command_memo(const struct call *call, ohmen_error *e);
 ohmen_status command_test_interval(const struct call *call, ohmen_error *e);
 ohmen_status command_explain(const struct call *call, ohmen_error *e);

@@ -85,6 +85,12 @@ const struct option options[OPTION_COUNT] = {
                         .help = "instructions to compute samples with: plain, wide (AVX2) or "
                                 "widest (AVX-512); the last that the processor has if left out. "
                                 "The figures are the same for all"},
+    [OPTION_X] = {"x", 0, VALUE_TEXT, "INPUT",
+                  .help =
+                      "the input that the map shows from left to right, by the name of its "
+                      "figure, such as lost-load.value; one of the two with the widest swings if "
+                      "left out"},
+    [OPTION_Y] = {"y", 0, VALUE_TEXT, "INPUT", .help = "the input that the map shows upwards"},
     [OPTION_MARKDOWN] = {"markdown", .help = "print docs/commands.md"},
     [OPTION_COMPLETION] = {"completion", .help = "print the completion for bash; use it by: "
                                                  "source <(ohmen help --completion)"},

@@ -169,6 +169,14 @@ static ohmen_status make_weigh(ohmen_register *r, const struct args *args, ohmen
     return ohmen_weigh(r, &query, operand(args), out, e);
 }
 
+static ohmen_status make_sensitivity(ohmen_register *r, const struct args *args, ohmen_report **out,
+                                     ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_sensitivity(r, &query, operand(args), args->text[OPTION_X], args->text[OPTION_Y],
+                             out, e);
+}
+
 static ohmen_status make_memo(ohmen_register *r, const struct args *args, ohmen_report **out,
                               ohmen_error *e)
 {
@@ -251,6 +259,11 @@ ohmen_status command_report(const struct call *call, ohmen_error *e)
 ohmen_status command_weigh(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_weigh, e);
+}
+
+ohmen_status command_sensitivity(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_sensitivity, e);
 }
 
 ohmen_status command_memo(const struct call *call, ohmen_error *e)

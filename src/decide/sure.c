@@ -8,9 +8,9 @@
 static const double LEAST_CORRELATION = 0.1;
 
 static const char *const kind_words[SURE_KINDS] = {
-    [SURE_BEST] = "best",
-    [SURE_WORTH_IT] = "worth-it",
-    [SURE_REGRET] = "regret",
+    [SURE_BEST] = "best",        [SURE_WORTH_IT] = "worth-it",
+    [SURE_REGRET] = "regret",    [SURE_P5] = "p5",
+    [SURE_P50] = "p50",          [SURE_P95] = "p95",
     [SURE_MOVES] = "moves-with",
 };
 
@@ -19,7 +19,7 @@ static const char *const kind_words[SURE_KINDS] = {
 /* What alternative k (by the order of the weighing) is worth in sample i. */
 static double worth_of(const struct sure *x, size_t k, size_t i)
 {
-    return k ? x->sample.values[k - 1][i] : 0;
+    return k ? x->sample.values[x->root[k]][i] : 0;
 }
 
 /* The best alternative in sample i; of equals the first in the ranking. */
@@ -115,14 +115,29 @@ static ohmen_status find_moves(struct figures *f, struct arena *a, const figure_
 
 /* ---- all of it ---- */
 
+/* The net present values in the order of the ranking, so that those that matter decide which inputs
+ * get the first places. */
+static figure_id *roots_of(struct arena *a, struct sure *x)
+{
+    const struct weighing *w = x->weighing;
+    figure_id *ids = NEW_ARRAY(a, w->alternatives.n, figure_id);
+    x->root = NEW_ARRAY(a, w->alternatives.n, size_t);
+    for (size_t i = 0, n = 0; i < w->alternatives.n; i++) {
+        size_t k = w->order[i];
+        if (k == 0)
+            continue;
+        x->root[k] = n;
+        ids[n++] = w->alternatives.at[k].net;
+    }
+    return ids;
+}
+
 ohmen_status sure_find(struct figures *f, struct arena *a, const struct weighing *w,
                        const struct sampling_plan *plan, struct sure *out, ohmen_error *e)
 {
     struct sure x = {.weighing = w, .plan = *plan};
     size_t n = w->alternatives.n;
-    figure_id *ids = NEW_ARRAY(a, n, figure_id);
-    for (size_t k = 1; k < n; k++)
-        ids[k - 1] = w->alternatives.at[k].net;
+    figure_id *ids = roots_of(a, &x);
     x.plan.n_judged = n - 1;
     ohmen_status status = figures_sample(f, a, &x.plan, n - 1, ids, &x.sample, e);
     if (status != OHMEN_OK)
@@ -132,7 +147,7 @@ ohmen_status sure_find(struct figures *f, struct arena *a, const struct weighing
     x.next = n > 1 ? &w->alternatives.at[w->order[1]] : NULL;
     x.of[0].net.is_certain = true;
     for (size_t k = 1; k < n; k++)
-        x.of[k].net = figure_spread_of(f, a, &x.sample, k - 1, ids[k - 1]);
+        x.of[k].net = figure_spread_of(f, a, &x.sample, x.root[k], w->alternatives.at[k].net);
     count(a, &x);
     status = find_moves(f, a, ids, &x, e);
     if (status == OHMEN_OK)
@@ -174,6 +189,9 @@ static struct sampled value_of(const struct sure *x, enum sure_kind kind, size_t
     case SURE_BEST: return x->of[k].best;
     case SURE_WORTH_IT: return x->of[k].worth_it;
     case SURE_REGRET: return x->of[k].regret;
+    case SURE_P5:
+    case SURE_P50:
+    case SURE_P95: return x->of[k].net.at[kind - SURE_P5];
     default: return (struct sampled){x->moves.at[k].correlation, 0};
     }
 }
@@ -189,14 +207,14 @@ static bool pick_value(struct figures *f, const struct sure *x, const char *name
         nearest_offer(near, known);
         if (!text_equal(known, name))
             continue;
-        *out = (struct sure_value){.name = known,
-                                   .kind = kind,
-                                   .weighing = w,
-                                   .of = of,
-                                   .value = value_of(x, kind, k),
-                                   .plan = x->plan,
-                                   .sets = x->sample.sets,
-                                   .points = x->sample.points};
+        *out =
+            (struct sure_value){.name = known,
+                                .kind = kind,
+                                .weighing = w,
+                                .of = of,
+                                .value = value_of(x, kind, k),
+                                .sure = x,
+                                .figure = kind == SURE_MOVES ? x->moves.at[k].figure : FIGURE_NONE};
         return true;
     }
     return false;
@@ -207,7 +225,7 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
 {
     struct weighing *w;
     struct nearest near;
-    struct sure x;
+    struct sure *x = NEW(f->arena, struct sure);
     enum sure_kind kind;
     const char *mark = find_mark(name, &kind);
     const char *decision = arena_strn(f->arena, name, (size_t)(mark - name));
@@ -217,11 +235,11 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
     if (status != OHMEN_OK)
         return status;
     weigh_rank(f, w);
-    status = sure_find(f, f->arena, w, plan, &x, e);
+    status = sure_find(f, f->arena, w, plan, x, e);
     if (status != OHMEN_OK)
         return status;
     nearest_init(&near, name);
-    if (pick_value(f, &x, name, kind, &near, out))
+    if (pick_value(f, x, name, kind, &near, out))
         return OHMEN_OK;
     return error_set(e, OHMEN_UNKNOWN, "the decision \"%s\" has no figure \"%s\"%s", w->id,
                      name + strlen(w->id) + 1, nearest_hint(f->arena, &near));

@@ -26,8 +26,8 @@ struct inner {
     uint32_t *place;    /* of input i of the tape: among the unknown, or n_unknown + varying */
 };
 
-/* Lives in `a`. The values of the evaluation are those at which means are taken. OHMEN_COMPUTE where
- * a varying input has no quantile. */
+/* Lives in `a`. The values of the evaluation are those at which means are taken. OHMEN_COMPUTE
+ * where a varying input has no quantile. */
 ohmen_status inner_new(struct arena *a, struct eval *v, struct spreads *s, enum isa isa,
                        node_id node, struct inner **out, ohmen_error *e);
 

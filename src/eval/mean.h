@@ -14,8 +14,8 @@
  *                    until the last halving changed nothing by more than 1e-6 of the mean of its
  *                    absolute value
  *   more             16 independent latin hypercubes of MEAN_STRATA points each (math/draw.h),
- *                    from streams that are keyed by each input's name, so that the same input has the
- *                    same values in every knot; the standard error is that of the 16 means
+ *                    from streams that are keyed by each input's name, so that the same input has
+ *                    the same values in every knot; the standard error is that of the 16 means
  *
  * A DIAGRAM is linear in the probability of each variable, at each time. It is integrated in that
  * way over those inputs only that two of its variables have in common, and at each point every

@@ -10,8 +10,8 @@
 #include <math.h>
 #include <stdlib.h>
 
-/* Names for which all places are good, and nodes that may be gone through for an order. */
-enum { FEW_NAMES = 8 };
+/* Names for which all places are good, roots that decide, and nodes that may be gone through. */
+enum { FEW_NAMES = 8, FIRST_ROOTS = 3 };
 static const double MOST_NODES = 1e8;
 
 /* An input, and the inputs of one name. */
@@ -119,6 +119,7 @@ void places_find(struct arena *a, struct eval *v, size_t n_roots, const node_id 
 {
     struct arena *scratch = arena_child(a);
     struct places x = {.v = v, .n = n, .numbers = numbers, .inputs = inputs};
+    n_roots = n_roots < FIRST_ROOTS ? n_roots : FIRST_ROOTS;
     find_names(scratch, &x);
     if (x.n_names > FEW_NAMES && (double)n_roots * (double)graph_size(v->g) <= MOST_NODES) {
         x.derivative = NEW_ARRAY(scratch, graph_size(v->g), double);

@@ -14,7 +14,7 @@
  *
  * Samples come in sets (math/statistics.h), and sets in batches of SAMPLING_BATCH, after which it
  * is decided whether there are enough: so what is stopped, for whatever reason, stops between two
- * batches, and the outcome depends on their number alone.
+ * batches, and the result depends on their number alone.
  *
  * Invariant: the values of a root depend on the seed, the method, the number of points, and on the
  * roots that the sampler was made for (whose inputs are drawn together, each at a place of its own

@@ -9,7 +9,8 @@
  *
  * Invariant: in every lane each root has the bits that the point rules give (eval_node) for the
  * values of that lane, whatever the instruction set, the block and the number of lanes are. That
- * holds with any mixture of lanes: no lane sees another one. Nothing is checked for being finite.
+ * holds with any mixture of lanes: no lane sees another one. Nothing is checked for being finite;
+ * which NaN it is that comes out is left open.
  *
  * HELD is a constant: its value in the evaluation. */
 #ifndef EVAL_TAPE_H

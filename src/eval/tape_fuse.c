@@ -26,6 +26,29 @@ static void chain(struct tape_maker *m, struct tape_step *s, enum tape_code c)
         code(m, s, c);
 }
 
+static bool is_plain_number(const struct tape_maker *m, uint32_t value)
+{
+    if (!(value & TAPE_CONSTANT))
+        return false;
+    double x = m->tape->constants.at[value & ~TAPE_CONSTANT];
+    return x < 0 || x > 0;
+}
+
+/* MIN or MAX; most are of one value and a number. */
+static void limit(struct tape_maker *m, struct tape_step *s, enum tape_code any,
+                  enum tape_code by_number)
+{
+    uint32_t *args = s->args.at;
+    if (s->args.n == 2 && args[0] & TAPE_CONSTANT) {
+        uint32_t first = args[0];
+        args[0] = args[1];
+        args[1] = first;
+    }
+    code(m, s, TAPE_take);
+    for (size_t i = 1; i < s->args.n; i++)
+        code(m, s, is_plain_number(m, args[i]) ? by_number : any);
+}
+
 static void function(struct tape_maker *m, struct tape_step *s, enum tape_code c)
 {
     code(m, s, TAPE_take);
@@ -87,8 +110,8 @@ void tape_begin_program(struct tape_maker *m, struct tape_step *s)
     case OP_MULTIPLY: chain(m, s, TAPE_times); break;
     case OP_DIVIDE: chain(m, s, TAPE_over); break;
     case OP_RATIO: chain(m, s, TAPE_part); break;
-    case OP_MIN: chain(m, s, TAPE_min); break;
-    case OP_MAX: chain(m, s, TAPE_max); break;
+    case OP_MIN: limit(m, s, TAPE_min, TAPE_at_most); break;
+    case OP_MAX: limit(m, s, TAPE_max, TAPE_at_least); break;
     case OP_NEGATE: function(m, s, TAPE_negate); break;
     case OP_COMPLEMENT: function(m, s, TAPE_complement); break;
     case OP_SQRT: function(m, s, TAPE_root); break;

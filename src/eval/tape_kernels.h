@@ -22,7 +22,8 @@
     X(negate)                                                                                      \
     X(root)
 
-/* With one, b. from: b - a; under: b / a; part: RATIO of a and b; whole: RATIO of b and a. */
+/* With one, b. from: b - a; under: b / a; part: RATIO of a and b; whole: RATIO of b and a.
+ * at_most, at_least: min and max with a constant that is neither 0 nor NaN. */
 #define TAPE_CODES_1(X)                                                                            \
     X(plus)                                                                                        \
     X(minus)                                                                                       \
@@ -32,6 +33,8 @@
     X(under)                                                                                       \
     X(part)                                                                                        \
     X(whole)                                                                                       \
+    X(at_most)                                                                                     \
+    X(at_least)                                                                                    \
     X(min)                                                                                         \
     X(max)
 
@@ -74,6 +77,7 @@ enum { TAPE_FORMS = 4, TAPE_FORMS_3 = 8 };
     X(times, minus)                                                                                \
     X(times, from)                                                                                 \
     X(times, min)                                                                                  \
+    X(times, at_most)                                                                              \
     X(times, times)                                                                                \
     X(plus, times)                                                                                 \
     X(minus, times)                                                                                \

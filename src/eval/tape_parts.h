@@ -134,7 +134,9 @@ tape_kernel *tape_function(const struct tape_maker *m, const struct tape_step *s
 void tape_begin_program(struct tape_maker *m, struct tape_step *s);
 /* Makes one step of several where a value is used only once. */
 void tape_fuse(struct tape_maker *m);
-/* Takes long sums apart (tape_split.c). */
+/* Puts steps in an order in which values are not kept for long (tape_order.c). */
+void tape_order(struct tape_maker *m);
+/* Takes long sums apart (tape_split.c); tape_order has to come after it. */
 void tape_split(struct tape_maker *m);
 /* Does the program have a loop of its own? */
 bool tape_has_loop(const struct tape_codes *codes);

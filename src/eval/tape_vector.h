@@ -119,6 +119,17 @@ static inline vector op_max(vector a, vector b)
     return (vector)((bits)most & ((bits)b | ~(a == b)));
 }
 
+/* b is neither 0 nor NaN, so that ties are equal in all bits. */
+static inline vector op_at_most(vector a, vector b)
+{
+    return select(b < a, b, a);
+}
+
+static inline vector op_at_least(vector a, vector b)
+{
+    return select(b > a, b, a);
+}
+
 static inline vector op_blend(vector a, vector b, vector c)
 {
     return a * b + (1 - a) * c;

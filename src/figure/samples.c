@@ -137,13 +137,59 @@ static size_t unknown_below(struct figures *f, struct arena *a, size_t n_below,
     return n;
 }
 
-/* The same unknown under several variants has several inputs of one name, with the same ranks. */
-static bool is_listed(const struct rank_inputs *all, const char *name)
+static const char *stream_of(const struct figures *f, node_id n)
 {
-    for (size_t i = 0; i < all->n; i++)
-        if (text_equal(all->at[i].name, name))
-            return true;
-    return false;
+    return f->input_names.at[graph_at(f->graph, n)->extra];
+}
+
+/* The first figure of the node; FIGURE_NONE. */
+static figure_id figure_of(const struct figures *f, node_id n)
+{
+    return n < f->of_node.n ? f->of_node.at[n] : FIGURE_NONE;
+}
+
+/* Fewer changes first, then by name. */
+static bool is_before(const struct figures *f, struct arena *a, figure_id p, figure_id q)
+{
+    size_t n = f->units.at[figure_at(f, p)->unit]->variant->n;
+    size_t m = f->units.at[figure_at(f, q)->unit]->variant->n;
+    return n != m ? n < m : text_compare(figure_name(f, a, p), figure_name(f, a, q)) < 0;
+}
+
+/* The same unknown under several variants has several inputs of one stream, with the same ranks:
+ * the one that stands for them. */
+struct streams {
+    const node_id *nodes;
+    size_t n;
+    struct strmap figures; /* stream -> figure_id of the most basic one, where there is one */
+    struct strmap told;    /* streams that are in the list */
+};
+
+static void find_streams(const struct figures *f, struct arena *a, struct streams *s)
+{
+    for (size_t i = 0; i < s->n; i++) {
+        const char *stream = stream_of(f, s->nodes[i]);
+        figure_id id = figure_of(f, s->nodes[i]);
+        figure_id *known = strmap_get(&s->figures, stream);
+        if (id == FIGURE_NONE || (known && !is_before(f, a, id, *known)))
+            continue;
+        figure_id *kept = NEW(a, figure_id);
+        *kept = id;
+        strmap_set(a, &s->figures, stream, kept);
+    }
+}
+
+static void add_rank(struct figures *f, struct arena *a, const struct streams *s, node_id n,
+                     double correlation, struct rank_inputs *out)
+{
+    const char *stream = stream_of(f, n);
+    const figure_id *known = strmap_get(&s->figures, stream);
+    *array_push(a, out) = (struct rank_input){
+        .input = graph_at(f->graph, n)->extra,
+        .name = known ? figure_name(f, a, *known) : stream,
+        .figure = known ? *known : FIGURE_NONE,
+        .correlation = correlation,
+    };
 }
 
 /* The inputs as they were drawn for a sample of n figures: each at its place among those of all. */
@@ -166,17 +212,21 @@ ohmen_status figure_ranks(struct figures *f, struct arena *a, const struct sampl
     struct sampling drawn;
     node_id *nodes;
     size_t n_inputs = unknown_below(f, scratch, n_below, below, &nodes);
+    struct streams streams = {.nodes = nodes, .n = n_inputs};
+    find_streams(f, scratch, &streams);
     plan.most_batches = sets / SAMPLING_BATCH;
     plan.precision = 0;
     plan.watch = NULL;
     ohmen_status status = draw_again(f, scratch, &plan, n, ids, n_inputs, nodes, &drawn, e);
     for (size_t i = 0; status == OHMEN_OK && i < n_inputs; i++) {
-        uint32_t input = graph_at(f->graph, nodes[i])->extra;
-        const char *name = f->input_names.at[input];
+        const char *stream = stream_of(f, nodes[i]);
+        if (strmap_has(&streams.told, stream))
+            continue;
+        strmap_set(scratch, &streams.told, stream, (void *)stream);
         double r =
             statistics_rank_correlation(scratch, sets * drawn.points, drawn.values[i], values);
-        if (fabs(r) >= least && !is_listed(out, name))
-            *array_push(a, out) = (struct rank_input){input, name, r};
+        if (fabs(r) >= least)
+            add_rank(f, a, &streams, nodes[i], r, out);
     }
     if (out->n > 1)
         qsort(out->at, out->n, sizeof *out->at, by_size);

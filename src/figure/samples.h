@@ -45,7 +45,8 @@ const char *spread_name(const struct figures *f, struct arena *a, figure_id id,
 /* The unknown inputs of figures, by how their values rank with those of a figure. */
 struct rank_input {
     uint32_t input;   /* of the graph */
-    const char *name; /* of the stream (figures.input_names) */
+    const char *name; /* of its figure; of its stream (figures.input_names) where it has none */
+    figure_id figure; /* of the fewest changes among those of its stream; or FIGURE_NONE */
     double correlation;
 };
 struct rank_inputs ARRAY_BODY(struct rank_input);

@@ -38,7 +38,7 @@ static void exponents(const struct averages *v, const struct stretch *now, doubl
         sum[k] = v->lasting[k];
     for (size_t i = 0; i < v->n_fading; i++) {
         const struct fading *f = &v->fading[i];
-        double begin = f->unreset ? v->courses[f->timing]->born : now[f->timing].origin;
+        double begin = f->unreset ? f->born : now[f->timing].origin;
         if (f->slowest * (t - begin) < DEAD)
             for (int k = 0; k < PACES; k++)
                 sum[k] += f->exponents[k];
@@ -166,7 +166,8 @@ static void add_fading(struct averages *v, const struct moving *one, bool unrese
         for (int k = 0; k < PACES; k++)
             v->lasting[k] += x[k];
     else
-        v->fading[v->n_fading++] = (struct fading){x, slowest, one->timing, unreset};
+        v->fading[v->n_fading++] = (struct fading){
+            {x[0], x[1], x[2]}, slowest, v->courses[one->timing]->born, one->timing, unreset};
 }
 
 static void find_fading(struct averages *v)

@@ -28,10 +28,9 @@ void average_values(struct arena *a, const struct averaged *what, double *result
 
 /* The same again and again, with other values of the variables i where changed[i] (all of them the
  * first time, and where `changed` is NULL); what the others ask for is kept, as far as there is
- * room. The diagram, the courses and the windows are those of the first time, and the versions of
- * mixtures stay where they were while they do not change. The same bytes as those of
- * average_values, whatever was asked for before. Lives in `a`, where only averages_new and the
- * first call of averages_take ask for memory: at the most AVERAGES_KEEP bytes for what is kept,
+ * room. The diagram, the courses and the windows are those of the first time. The same bytes as
+ * those of average_values, whatever was asked for before. Lives in `a`, where only averages_new and
+ * the first call of averages_take ask for memory: at the most AVERAGES_KEEP bytes for what is kept,
  * 420 a node of the diagram and 4096 a variable. Different ones may be used by several threads at
  * once. */
 #define AVERAGES_KEEP (400 * 1024)

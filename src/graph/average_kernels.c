@@ -17,18 +17,14 @@ static double greater(double x, double y)
 
 /* ---- where courses are ---- */
 
-static double greatest(const double *restrict x)
+/* What one run needs is written FILL lanes at a time, over the beginning of the next. */
+enum { FILL = LEGENDRE_MOST };
+
+static inline void fill(double *lane, size_t n, double x)
 {
-    enum { PARTS = 8 };
-    double most[PARTS], all = 0;
-    for (int i = 0; i < PARTS; i++)
-        most[i] = x[i];
-    for (int k = PARTS; k < LANES; k += PARTS)
-        for (int i = 0; i < PARTS; i++)
-            most[i] = greater(most[i], x[k + i]);
-    for (int i = 0; i < PARTS; i++)
-        all = greater(all, most[i]);
-    return all;
+    for (size_t k = 0; k < n; k += FILL)
+        for (int i = 0; i < FILL; i++)
+            lane[k + i] = x;
 }
 
 static void times_since(const double *restrict t, const double *restrict origin,
@@ -44,21 +40,30 @@ static void times_of_age(const double *restrict t, double born, double *restrict
         age[k] = positive(t[k] - born);
 }
 
+/* at->left, which is 1 but where the first stretch is fresh. */
+static void set_left(const struct run *runs, size_t timing, double *left)
+{
+    for (size_t k = 0; k < LANES; k = runs++->end)
+        for (size_t i = k; i < runs->end; i++)
+            left[i] = !runs->now[timing].fresh;
+}
+
 static void moments(const double *t, const struct run *runs, size_t timing, double born, bool fresh,
                     struct moments *at)
 {
-    _Alignas(LANES_ALIGNED) lanes origin;
-    for (size_t k = 0; k < LANES; runs++) {
-        const struct stretch *now = &runs->now[timing];
-        for (size_t i = k; i < runs->end && fresh; i++)
-            at->left[i] = !now->fresh;
-        for (; k < runs->end; k++)
-            origin[k] = now->origin;
+    double origin[LANES + FILL], last = t[0], since = 0;
+    if (fresh)
+        set_left(runs, timing, at->left);
+    for (size_t k = 0; k < LANES; k = runs++->end) {
+        double latest = t[runs->end - 1], from = runs->now[timing].origin;
+        fill(origin + k, runs->end - k, from);
+        since = greater(since, latest - from);
+        last = greater(last, latest);
     }
     times_since(t, origin, at->since);
     times_of_age(t, born, at->age);
-    at->latest_since = greatest(at->since);
-    at->latest_age = greatest(at->age);
+    at->latest_since = since;
+    at->latest_age = positive(last - born);
 }
 
 /* ---- the diagram ---- */

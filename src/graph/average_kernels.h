@@ -28,7 +28,7 @@ typedef double orders[LEGENDRE_ORDERS];
 
 struct average_kernels {
     course_kernel *course;
-    /* Where the courses of one timing are at the times t; `fresh`: at->left is to be filled, too. */
+    /* Where the courses of one timing are at the times t; `fresh`: fill at->left, too. */
     void (*moments)(const double *t, const struct run *runs, size_t timing, double born, bool fresh,
                     struct moments *at);
     /* The rows in their order, p and q by variable. */

@@ -157,6 +157,15 @@ static int pace_of(const struct legendre_rule *rule)
     return (rule->n > 4) + (rule->n > 8);
 }
 
+/* The next whole number, without a call where it is small. */
+static double whole_above(double x)
+{
+    if (!(x < 1e9))
+        return ceil(x);
+    double whole = (int32_t)x;
+    return whole < x ? whole + 1 : whole;
+}
+
 /* Rules rise, so what does with one part ends the search. */
 const struct legendre_rule *average_rule(const struct reach *r, const double x[PACES],
                                          double *parts)
@@ -168,7 +177,7 @@ const struct legendre_rule *average_rule(const struct reach *r, const double x[P
         double reach = r->of[i], length = x[pace_of(rule)];
         if (reach == 0 || length * (double)rule->n >= fewest * reach)
             continue;
-        double n = length <= reach ? 1 : ceil(length / reach), points = n * (double)rule->n;
+        double n = length <= reach ? 1 : whole_above(length / reach), points = n * (double)rule->n;
         if (points < fewest) {
             best = rule;
             fewest = points;

@@ -23,8 +23,7 @@ struct moving {
 
 /* Exponents that die away before the end of some piece. */
 struct fading {
-    const double *exponents;
-    double slowest;
+    double exponents[PACES], slowest, born;
     size_t timing;
     bool unreset;
 };

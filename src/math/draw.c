@@ -128,6 +128,7 @@ static struct input input_of(const struct draw_input *in, const struct draw_plan
 ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
                        const struct draw_input *inputs, struct draws **out, ohmen_error *e)
 {
+    assert(p->log2_points >= DRAW_LEAST_LOG2 && p->log2_points <= DRAW_MOST_LOG2);
     struct draws *d = NEW(a, struct draws);
     struct quantile_edges *edges = NEW(a, struct quantile_edges);
     struct cache cache = cache_new(a, n);
@@ -202,7 +203,7 @@ static void fill_ends(const struct draws *d, const struct quantile_steps *s, siz
         x[r->which[i]] = r->v[i];
 }
 
-/* Strata that reach into cells at the lower and the upper end. */
+/* Strata that reach into cells without a polynomial, at the lower and the upper end. */
 struct ends {
     size_t low, high;
 };
@@ -210,7 +211,8 @@ struct ends {
 static struct ends ends_of(const struct draws *d, const struct quantile_cells *c)
 {
     size_t n = (size_t)1 << d->log2, up = QUANTILE_CELLS - 1;
-    return (struct ends){(c->low * n + up) / QUANTILE_CELLS, (c->high * n + up) / QUANTILE_CELLS};
+    size_t low = (c->low * n + up) / QUANTILE_CELLS, high = (c->high * n + up) / QUANTILE_CELLS;
+    return low + high <= n ? (struct ends){low, high} : (struct ends){n, 0};
 }
 
 static size_t find_ends(const struct draws *d, const struct ends *ends, const struct rows *r)
@@ -222,16 +224,27 @@ static size_t find_ends(const struct draws *d, const struct ends *ends, const st
     return found;
 }
 
+/* The same where each stratum has one value, in order. */
+static size_t list_ends(const struct draws *d, const struct ends *ends, const struct rows *r)
+{
+    size_t n = (size_t)1 << d->log2;
+    memcpy(r->which, d->counting, ends->low * sizeof *r->which);
+    memcpy(r->which + ends->low, d->counting + n - ends->high, ends->high * sizeof *r->which);
+    return ends->low + ends->high;
+}
+
 static void fill_table(const struct draws *d, const struct quantile_table *t, const struct rows *r,
                        double *x)
 {
     size_t n = (size_t)1 << d->log2;
     struct ends ends = ends_of(d, &t->cells);
-    if (d->log2 == QUANTILE_LOG2_CELLS && r->stratum == d->counting)
+    bool ordered = r->stratum == d->counting;
+    if (d->log2 == QUANTILE_LOG2_CELLS && ordered)
         d->kernels->cells(ends.low, n - ends.high, &t->cells, r->jitter, x);
     else
         d->kernels->cells_at(n, d->log2, &t->cells, r->stratum, r->jitter, x);
-    fill_ends(d, &t->steps, find_ends(d, &ends, r), r, x);
+    size_t found = ordered ? list_ends(d, &ends, r) : find_ends(d, &ends, r);
+    fill_ends(d, &t->steps, found, r, x);
 }
 
 /* Between 0 and 1 with the most likely value `top` (dist.c has the formula). */
@@ -288,9 +301,9 @@ static void nested_order(const struct draws *d, struct stream s, const struct ro
     d->kernels->nest(d->log2, bits, r->spare, r->place);
 }
 
-/* The strata of an input's points before they are scrambled. Groups behind the first one take the
- * points in another order in each set, which is nested, too, so that any 2^k of them that lie evenly
- * still do. */
+/* The strata of an input's points before they are scrambled. Groups behind the first one take
+ * the points in another order in each set, which is nested, too, so that any 2^k of them that lie
+ * evenly still do. */
 static const uint16_t *cells_of(const struct draws *d, const struct input *in, uint64_t set,
                                 const struct rows *r)
 {

@@ -20,12 +20,12 @@
  * The first places are the best ones, about eight of them far better than those behind, so they are
  * for the inputs that matter most. Computed for a product of 7 lognormals with sigma .4 and sets of
  * 1,024 points: the error of a set is .0089 with the first 7 places, .026 with 7 of the 40 at
- * random, .028 with hypercubes, .045 with independent values. Two inputs of one place and different
- * names would have equal or opposite halves in every set: not to be had where they meet in a figure.
+ * random, .028 with hypercubes, .045 with independent values. Two inputs of one place and other
+ * names would have equal or opposite halves in every set: not to be had where they meet.
  *
  * Invariant: the values of an input in a set are decided by the seed, its name, its distribution,
- * its place, the method, the number of points and the number of the set, and by nothing else: not by
- * other inputs, the order in which anything is asked for, threads, or the instruction set. */
+ * its place, the method, the number of points and the number of the set, and by nothing else: not
+ * by other inputs, the order in which anything is asked for, threads, or the instruction set. */
 #ifndef MATH_DRAW_H
 #define MATH_DRAW_H
 

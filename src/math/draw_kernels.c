@@ -112,15 +112,26 @@ static void net(unsigned log2, const uint16_t *direction, uint16_t *cell)
     }
 }
 
-/* Each of s numbers becomes two, the even one first, or second where its bit is set. */
-static void split(size_t s, const uint64_t *restrict bits, const uint16_t *restrict from,
-                  uint16_t *restrict to)
+enum { TOGETHER = 16 }; /* numbers that are split at a time */
+
+/* Each of n <= 16 numbers becomes two, the even one first, or second where its bit is set. */
+static inline void split_some(size_t n, unsigned bits, const uint16_t *restrict from,
+                              uint16_t *restrict to)
 {
-    for (size_t j = 0; j < s; j++) {
-        unsigned bit = (unsigned)(bits[(s + j) / 64] >> (s + j) % 64) & 1, even = 2u * from[j];
-        to[2 * j] = (uint16_t)(even + bit);
-        to[2 * j + 1] = (uint16_t)(even + 1 - bit);
+    for (size_t j = 0; j < n; j++) {
+        uint16_t even = (uint16_t)(2u * from[j]), odd = even | 1;
+        bool turned = bits & 1u << j;
+        to[2 * j] = turned ? odd : even;
+        to[2 * j + 1] = turned ? even : odd;
     }
+}
+
+static void split(size_t s, const uint64_t *bits, const uint16_t *from, uint16_t *to)
+{
+    if (s < TOGETHER)
+        split_some(s, (unsigned)(bits[0] >> s), from, to);
+    for (size_t j = 0; j + TOGETHER <= s; j += TOGETHER)
+        split_some(TOGETHER, (unsigned)(bits[(s + j) / 64] >> (s + j) % 64), from + j, to + 2 * j);
 }
 
 static void nest(unsigned log2, const uint64_t *bits, uint16_t *spare, uint16_t *place)

@@ -10,10 +10,11 @@
 #include "math/elementary.h"
 
 #define LOG_ROOT_2_PI 0.91893853320467274178
-#define CORE 6.25    /* the equal steps reach from -CORE to CORE: p = 2e-10 */
-#define END 1.5      /* the length of the two steps beyond */
-#define WITHIN 4e-9  /* the error that is allowed for an estimate */
-#define ACCURATE 6.1 /* the |z| up to which it is: p = 5e-10 */
+#define CORE 6.25              /* the equal steps reach from -CORE to CORE: p = 2e-10 */
+#define END 1.5                /* the length of the two steps beyond */
+#define NEXT_TO_NOTHING 1e-290 /* its inverse is still a number */
+#define WITHIN 4e-9            /* the error that is allowed for an estimate */
+#define ACCURATE 6.1           /* the |z| up to which it is: p = 5e-10 */
 
 enum { LEAST_STEPS = 64, MOST_STEPS = 1024 };
 
@@ -65,7 +66,7 @@ static void beta_density(const struct shape *s, struct dist_point *at)
     double rest = -math_expm1(at->log_x);
     at->log_density = a * at->log_x + (b - 1) * math_log(rest) + s->log_factor;
     at->slope = a - (b - 1) * x / rest;
-    if (rest <= 0)
+    if (rest < NEXT_TO_NOTHING)
         *at = (struct dist_point){at->log_x, INFINITY, 0};
 }
 
@@ -202,13 +203,12 @@ static void solve_all(const struct shape *s, const struct points *points)
     solve(s, points, core + 2, NAN);
 }
 
-/* The error in the middle of stretch k or of the next, whichever is greater, or about that. With
- * D the sixth derivative it is D / 720 / 2^6, and the third derivatives of the two differ by D / 60
- * where they meet. */
+/* The error in the middle of stretches k and k + 1, or about that. With D the sixth derivative it
+ * is D / 720 / 2^6, and the third derivatives of the two differ by D / 60 where they meet. */
 static double error_between(double *const term[QUANTILE_TERMS], size_t k)
 {
     double here = 6 * term[3][k] + 24 * term[4][k] + 60 * term[5][k];
-    return fabs(here - 6 * term[3][k + 1]) / 768;
+    return (here - 6 * term[3][k + 1]) / 768;
 }
 
 static void new_terms(struct arena *a, size_t n, double *term[QUANTILE_TERMS])
@@ -256,15 +256,19 @@ static struct points points_new(struct arena *a, size_t core)
     return p;
 }
 
-static double worst_error(const struct quantile_steps *s, size_t core)
+/* Are all steps that must be so accurate enough? How much the estimate bends is added to it: that
+ * is little, unless steps are too long for the estimate. */
+static bool are_accurate(const struct quantile_steps *s, size_t core)
 {
-    double worst = 0, step = 1 / s->per_step;
-    for (size_t k = 1; k < core; k++) {
+    double step = 1 / s->per_step;
+    for (size_t k = 2; k + 1 < core; k++) {
         double error = error_between(s->term, k);
-        if (fabs((double)k * step - CORE) <= ACCURATE + step && !(error <= worst))
-            worst = error;
+        double bend = error_between(s->term, k - 1) + error_between(s->term, k + 1) - 2 * error;
+        if (fabs((double)k * step - CORE) <= ACCURATE + step &&
+            !(fabs(error) + fabs(bend) <= WITHIN))
+            return false;
     }
-    return worst;
+    return isfinite(s->term[0][0]) && isfinite(s->term[1][core + 1]);
 }
 
 static void put_steps(const struct points *points, struct quantile_steps *s)
@@ -298,8 +302,7 @@ static bool make_steps(struct arena *a, const struct shape *shape, size_t core,
     solve_all(shape, &points);
     put_steps(&points, s);
     arena_free(room);
-    return worst_error(s, core) <= WITHIN && isfinite(s->term[0][0]) &&
-           isfinite(s->term[1][core + 1]);
+    return are_accurate(s, core);
 }
 
 /* Where log x, or x, is a line over z: one step. */
@@ -368,9 +371,9 @@ static struct knot edge_at(const struct quantile_steps *s, double z, double du)
 
 static bool cell_is_bad(const struct quantile_cells *c, size_t k)
 {
-    double x = fabs(c->term[0][k + 1]), shortfall = error_between(c->term, k);
+    double x = fabs(c->term[0][k + 1]), error = fabs(error_between(c->term, k));
     double scale = x > 0 ? x : fabs(c->term[1][k]);
-    return !(shortfall <= WITHIN * scale);
+    return !(error <= WITHIN * scale);
 }
 
 /* Cells from the middle outwards as far as they are good; the two outermost have no end. */

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The derivation of a figure: formula by formula, down to inputs with their source. And of what is
- * worked out from figures and is none of the graph: values at which a decision turns, and what it
- * leans on. */
+ * worked out from figures and is none of the graph: values at which a decision turns, what it
+ * leans on, swings, elasticities, and how sure it is. */
 #include "decide/interval.h"
 #include "work/spreads.h"
 
@@ -211,6 +211,63 @@ static ohmen_status explain_lean(struct job *j, const struct explain_request *q,
     return OHMEN_OK;
 }
 
+static ohmen_status explain_swing(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct swing_value swing;
+    ohmen_status status = swing_find(j->figures, q->figure, &swing, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct consumed c = swing_consumed(j, &swing);
+    part_swing_head(j, &swing);
+    derive(j, q, &c);
+    part_swing_method(j, &swing);
+    return OHMEN_OK;
+}
+
+static ohmen_status explain_elasticity(struct job *j, const struct explain_request *q,
+                                       ohmen_error *e)
+{
+    struct elasticity elasticity;
+    ohmen_status status = elasticity_find(j->figures, q->figure, &elasticity, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct consumed c = elasticity_consumed(j, &elasticity);
+    part_elasticity_head(j, &elasticity);
+    derive(j, q, &c);
+    return OHMEN_OK;
+}
+
+static ohmen_status explain_sure(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct sure_value value;
+    ohmen_status status = sure_value_find(j->figures, q->figure, &j->plan, &value, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct consumed c = sure_consumed(j, &value);
+    part_sure_head(j, &value);
+    derive(j, q, &c);
+    part_sure_method(j, &value);
+    return OHMEN_OK;
+}
+
+/* What is worked out from figures and is none of the graph, by the form of its name. */
+static const struct worked_out {
+    bool (*is_named)(const char *name);
+    ohmen_status (*explain)(struct job *j, const struct explain_request *q, ohmen_error *e);
+} worked_out[] = {
+    {turn_is_named, explain_turn},   {lean_is_named, explain_lean},
+    {swing_is_named, explain_swing}, {elasticity_is_named, explain_elasticity},
+    {sure_is_named, explain_sure},
+};
+
+static const struct worked_out *worked_out_named(const char *name)
+{
+    for (size_t i = 0; i < sizeof worked_out / sizeof *worked_out; i++)
+        if (worked_out[i].is_named(name))
+            return &worked_out[i];
+    return NULL;
+}
+
 /* Compiled and evaluated. */
 static ohmen_status find_figure(struct job *j, const char *name, figure_id *id, bool *over_cycles,
                                 ohmen_error *e)
@@ -229,10 +286,9 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     const struct explain_request *q = ctx;
     figure_id id = FIGURE_NONE;
     ohmen_status status = job_load_figures(j, e);
-    if (status == OHMEN_OK && turn_is_named(q->figure))
-        return explain_turn(j, q, e);
-    if (status == OHMEN_OK && lean_is_named(q->figure))
-        return explain_lean(j, q, e);
+    const struct worked_out *other = worked_out_named(q->figure);
+    if (status == OHMEN_OK && other)
+        return other->explain(j, q, e);
     const char *figure = q->figure;
     enum spread_point at;
     bool over_cycles, is_point = spread_is_named(j->arena, q->figure, &figure, &at);

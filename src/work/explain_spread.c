@@ -210,7 +210,7 @@ static void inputs_table(struct job *j, const struct rank_inputs *all)
                 LEAST_CORRELATION);
 }
 
-static ohmen_status part_moves(struct job *j, const struct sampled_figure *x, ohmen_error *e)
+static ohmen_status part_ranks(struct job *j, const struct sampled_figure *x, ohmen_error *e)
 {
     struct rank_inputs all = {0};
     node_id node = figure_at(j->figures, x->id)->node;
@@ -238,7 +238,7 @@ ohmen_status part_spread_point(struct job *j, figure_id id, enum spread_point at
     note_point(j, &x, at);
     points_table(j, &x);
     note_sample(j, &x);
-    return part_moves(j, &x, e);
+    return part_ranks(j, &x, e);
 }
 
 ohmen_status spread_prepare(struct job *j, const char *figure, ohmen_error *e)

@@ -327,10 +327,18 @@ static void turns(struct memo *m)
     report_note(m->j->report, "turns", "%s", turn_sentence(m->j, m->w));
 }
 
+static void how_sure(struct memo *m)
+{
+    const char *words = sure_sentence(m->j, m->w);
+    if (*words)
+        report_note(m->j->report, "how-sure", "%s", words);
+}
+
 static void part_recommendation(struct memo *m)
 {
     report_heading(m->j->report, 2, "Recommendation");
     recommended(m);
+    how_sure(m);
     costs(m);
     avoids(m);
     ends(m);
@@ -382,6 +390,19 @@ static void part_left_out(struct memo *m)
     part_cautions(m->j);
 }
 
+/* --- how sure it is --- */
+
+/* No input is asked for, so that the map cannot fail. */
+static void part_how_sure(struct memo *m)
+{
+    if (!any_alternative(m))
+        return;
+    report_heading(m->j->report, 2, "How sure the answer is");
+    part_sure(m->j, m->w);
+    part_swings(m->j, m->w);
+    part_map(m->j, m->w, NULL, NULL, NULL);
+}
+
 /* --- signatures --- */
 
 static void part_sign(struct memo *m)
@@ -422,6 +443,7 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     part_worth_by_perspective(j, w);
     part_together(j, w);
     part_customers_and_people(j, w);
+    part_how_sure(&m);
     report_heading(j->report, 2, "What happens");
     part_endings(j, w);
     part_weighed_hazards(j, w);

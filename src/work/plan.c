@@ -2,7 +2,7 @@
 /* How what is unknown is sampled: from the query to a plan, and back to words.
  *
  * Samples come in 16 sets, as large as what is asked for allows, since in larger sets points lie
- * more evenly; where there is a precision to be reached they stay small, so that one can stop soon. */
+ * more evenly; where there is a precision to be reached they stay small: one can stop soon. */
 #include <string.h>
 
 #include "base/parallel.h"

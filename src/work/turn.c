@@ -10,30 +10,6 @@ enum { MOST_ROWS = 12 };
 
 /* --- words --- */
 
-static const char *against(const struct alternative *x)
-{
-    return x->n == 0 ? "doing nothing" : x->name;
-}
-
-static const char *then_wins(const struct alternative *x)
-{
-    return x->n == 0 ? "do nothing" : x->name;
-}
-
-/* A value of the figure in the unit in which it is shown. */
-static double shown(struct job *j, figure_id id, double x)
-{
-    double value;
-    figure_display(j, id, &value);
-    return x * (value / figure_value(j->figures, id));
-}
-
-static const char *unit_of(struct job *j, figure_id id)
-{
-    double unused;
-    return figure_display(j, id, &unused);
-}
-
 /* "1 in 340 section a" for a rate per section and year that is seldom; "" for anything else. */
 static const char *seldom(struct job *j, const char *unit, double x)
 {
@@ -47,7 +23,7 @@ static const char *seldom(struct job *j, const char *unit, double x)
 
 static const char *words(struct job *j, const struct turn *t, double x)
 {
-    const char *period = seldom(j, unit_of(j, t->input), shown(j, t->input, x));
+    const char *period = seldom(j, figure_unit(j, t->input), figure_shown(j, t->input, x));
     return *period ? period : figure_words(j, t->input, x);
 }
 
@@ -72,11 +48,12 @@ static void turn_row(struct job *j, struct block *b, const struct turn *t)
 {
     struct report *r = j->report;
     struct row *row = block_row(r, b);
-    const char *unit = unit_of(j, t->input), *name = figure_name(j->figures, j->arena, t->input);
-    double at = shown(j, t->input, t->at);
+    const char *unit = figure_unit(j, t->input),
+               *name = figure_name(j->figures, j->arena, t->input);
+    double at = figure_shown(j, t->input, t->at);
     row_text(r, row, name);
     row_text(r, row, figure_subject(j, t->input));
-    row_number(r, row, shown(j, t->input, figure_value(j->figures, t->input)), name);
+    row_number(r, row, figure_shown(j, t->input, figure_value(j->figures, t->input)), name);
     row_number(r, row, at, t->name);
     row_text(r, row, unit);
     row_text(r, row, seldom(j, unit, at));
@@ -85,7 +62,7 @@ static void turn_row(struct job *j, struct block *b, const struct turn *t)
         row_empty(r, row);
     else
         row_yes(r, row, t->spread == TURN_WITHIN);
-    row_text(r, row, then_wins(t->other));
+    row_text(r, row, alternative_words(t->other));
 }
 
 static void turn_table(struct job *j, const struct turns *t)
@@ -154,7 +131,7 @@ const char *turn_sentence(struct job *j, const struct weighing *w)
         return "No stated quantity, moved alone, turns it within a factor of ten.";
     const struct turn *t = &all->list.at[0];
     return arena_printf(j->arena, "It would turn to %s if %s (%s) were %s %s; now %s.",
-                        against(t->other), figure_name(j->figures, j->arena, t->input),
+                        alternative_noun(t->other), figure_name(j->figures, j->arena, t->input),
                         figure_subject(j, t->input), turn_sides[t->side], words(j, t, t->at),
                         words(j, t, t->now));
 }
@@ -186,7 +163,7 @@ void part_turn_head(struct job *j, const struct turn *t)
     report_note(j->report, "figure",
                 "%s = %s: where %s is worth as much as %s, if %s alone is moved. Damage counted: "
                 "%s.",
-                t->name, words(j, t, t->at), against(t->best), against(t->other),
+                t->name, words(j, t, t->at), alternative_noun(t->best), alternative_noun(t->other),
                 figure_name(j->figures, j->arena, t->input), perspective_words(j));
 }
 

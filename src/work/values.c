@@ -103,6 +103,19 @@ static const struct customary *customary_of(enum property p)
     return NULL;
 }
 
+const char *figure_unit(struct job *j, figure_id id)
+{
+    double unused;
+    return figure_display(j, id, &unused);
+}
+
+double figure_shown(struct job *j, figure_id id, double value)
+{
+    double shown, whole = figure_value(j->figures, id);
+    figure_display(j, id, &shown);
+    return whole == 0 ? value : value * (shown / whole);
+}
+
 enum number_style figure_style(struct job *j, figure_id id)
 {
     enum property p = figure_at(j->figures, id)->property;
@@ -137,9 +150,8 @@ const char *figure_display(struct job *j, figure_id id, double *shown)
 const char *figure_words(struct job *j, figure_id id, double value)
 {
     char number[32];
-    double shown, whole = figure_value(j->figures, id);
-    const char *unit = figure_display(j, id, &shown);
-    shown = whole == 0 ? value : value * (shown / whole);
+    const char *unit = figure_unit(j, id);
+    double shown = figure_shown(j, id, value);
     if (text_starts(unit, j->model->settings->currency))
         return money_text(j->arena, shown, unit);
     number_text(number, shown, STYLE_PLAIN);

@@ -5,10 +5,14 @@
 
 #include "work/work.h"
 
-/* "do nothing" for people, the options' ids otherwise. */
-static const char *alternative_words(const struct alternative *x)
+const char *alternative_words(const struct alternative *x)
 {
     return x->n == 0 ? "do nothing" : x->name;
+}
+
+const char *alternative_noun(const struct alternative *x)
+{
+    return x->n == 0 ? "doing nothing" : x->name;
 }
 
 static double net_of(const struct job *j, const struct alternative *x)
@@ -201,6 +205,7 @@ void part_weighing(struct job *j, struct weighing *w)
     sentence(j, "to-others", perspectives_sentence(j, w));
     sentence(j, "outside-focus", outside_focus_sentence(j, w));
     part_alternatives(j, w);
+    part_sure(j, w);
     left_out_note(j, w);
     part_options(j, w);
     part_worth_by_perspective(j, w);

@@ -7,8 +7,10 @@
 #ifndef WORK_WORK_H
 #define WORK_WORK_H
 
+#include "decide/elasticity.h"
 #include "decide/lean.h"
 #include "decide/sure.h"
+#include "decide/swing.h"
 #include "decide/turn.h"
 #include "figure/supply.h"
 #include "ohmen/ohmen.h"
@@ -60,12 +62,14 @@ struct job {
     struct figures *figures;
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
-    struct sampling_plan plan;    /* of what is sampled: job_load_figures */
-    struct figure_ids together;   /* sums over the register that share a sample (spreads.c) */
+    struct sampling_plan plan;               /* of what is sampled: job_load_figures */
+    struct figure_ids together; /* sums over the register that share a sample (spreads.c) */
     struct {
         size_t done, all; /* samples of single figures, for who watches; all 0: there is one */
     } sampled;
-    struct strmap turns; /* decision -> struct turns, once they were asked for (turn.c) */
+    /* By decision, once they were asked for: struct turns (turn.c), struct known_sure (sure.c),
+     * struct known_swings (swings.c). */
+    struct strmap turns, sures, swings;
     struct ohmen_report *out;
     struct report *report; /* &out->report */
     bool interrupted;      /* the sampling, by who was asked whether to stop */
@@ -183,6 +187,9 @@ double worst_individual_risk(const struct job *j, const struct weighing *w,
 /* A number in a sentence: three significant digits. */
 const char *plain_text(struct job *j, double x);
 void part_weighing_grid(struct job *j, struct weighing *w);
+/* An alternative in words: "do nothing" or the ids of its options; as a noun "doing nothing". */
+const char *alternative_words(const struct alternative *x);
+const char *alternative_noun(const struct alternative *x);
 /* One sentence: what is best, and what it is worth. */
 const char *weighing_sentence(struct job *j, const struct weighing *w);
 
@@ -197,6 +204,40 @@ const char *turn_sentence(struct job *j, const struct weighing *w);
 void part_turn_head(struct job *j, const struct turn *t);
 void part_turn_method(struct job *j, const struct turn *t);
 struct consumed turn_consumed(struct job *j, const struct turn *t);
+
+/* How sure the answer is, over all that is unknown (sure.c). The weighing is ranked. A sentence, ""
+ * where doing nothing is the only alternative; a table of the alternatives, nothing where all is
+ * certain; both; and the inputs that it moves with. Where nothing can be sampled the sentence says
+ * why. */
+const char *sure_sentence(struct job *j, const struct weighing *w);
+void part_sure_table(struct job *j, const struct weighing *w);
+void part_sure(struct job *j, const struct weighing *w);
+void part_moves(struct job *j, const struct weighing *w);
+
+/* The derivation of one of these numbers. */
+void part_sure_head(struct job *j, const struct sure_value *v);
+void part_sure_method(struct job *j, const struct sure_value *v);
+struct consumed sure_consumed(struct job *j, const struct sure_value *v);
+
+/* The alternative whose worth is looked at: the best one; where that is to do nothing the best
+ * option, NULL where there is none (swings.c). */
+const struct alternative *judged_alternative(const struct weighing *w);
+/* The two inputs with the widest swings; those that there are not stay as they were. */
+void widest_inputs(struct job *j, const struct weighing *w, const char *out[2]);
+/* What each unknown input swings, as a picture; elasticities, as a table. Of that alternative;
+ * nothing where there is none. */
+void part_swings(struct job *j, const struct weighing *w);
+void part_elasticities(struct job *j, const struct weighing *w);
+void part_swing_head(struct job *j, const struct swing_value *v);
+void part_swing_method(struct job *j, const struct swing_value *v);
+struct consumed swing_consumed(struct job *j, const struct swing_value *v);
+void part_elasticity_head(struct job *j, const struct elasticity *x);
+struct consumed elasticity_consumed(struct job *j, const struct elasticity *x);
+
+/* Which alternative is best by two inputs (NULL: those with the widest swings). OHMEN_UNKNOWN and
+ * OHMEN_COMPUTE, as map_find, only for inputs that were asked for (map.c). */
+ohmen_status part_map(struct job *j, const struct weighing *w, const char *x, const char *y,
+                      ohmen_error *e);
 
 /* The best alternative year by year; nothing where that is to do nothing. It is ranked. */
 void part_flow(struct job *j, struct weighing *w);
@@ -222,6 +263,10 @@ enum number_style figure_style(struct job *j, figure_id id);
 /* The same for a figure: a stated quantity is shown in the unit that its author used, customer
  * time in hours. */
 const char *figure_display(struct job *j, figure_id id, double *shown);
+
+/* That unit, and a value of the figure, which need not be its own, in it. */
+const char *figure_unit(struct job *j, figure_id id);
+double figure_shown(struct job *j, figure_id id, double value);
 
 /* A value of a figure, which need not be its own, in words with that unit. */
 const char *figure_words(struct job *j, figure_id id, double value);

@@ -11,11 +11,6 @@ static double value_of(const struct job *j, figure_id id)
     return id == FIGURE_NONE ? 0 : figure_value(j->figures, id);
 }
 
-static const char *alternative_words(const struct alternative *x)
-{
-    return x->n == 0 ? "do nothing" : x->name;
-}
-
 /* --- perspectives --- */
 
 static double net_to(const struct job *j, const struct alternative *x, size_t perspective)

@@ -214,7 +214,8 @@ static struct averaged averaged_of(const struct whole *w, const struct hazard_ex
                              .q = q,
                              .course = course,
                              .x = (const course_arguments *)values,
-                             .windows = graph_windows_of(g, x->node)};
+                             .windows = graph_windows_of(g, x->node),
+                             .isa = isa_best()};
 }
 
 static void gather(struct bench *b, bool check)

@@ -4,7 +4,8 @@
 #
 #   tests/bench/run.sh [BUILD]
 #
-# BUILD is a build folder, build/gcc where none is named.
+# BUILD is a build folder, build/gcc where none is named. The comparison with NumPy wants the
+# package python3-numpy, which nothing else needs; without it a line says so.
 set -eu
 
 source=$(cd "$(dirname "$0")/../.." && pwd -P)
@@ -23,3 +24,6 @@ trap 'exit 130' INT TERM
 "$build/tests/bench/averages" "$work/skerry.ohmen"
 "$build/tests/bench/protection" 10000 "$work"
 "$build/tests/bench/lanes" 1000000
+"$build/tests/bench/tape" 1000 10240
+python3 "$source/tests/bench/numpy_model.py" "$build/tests/bench/tape" 50 16384
+"$build/tests/bench/draws"

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The model in one loop (tape_model.h): what a compiler makes of it is what a tape is measured by. */
+/* The model in one loop (tape_model.h): a tape is measured by what a compiler makes of it. */
 #include "tape_model.h"
 
 #include <math.h>

@@ -78,8 +78,9 @@ for decision in $decisions; do
         continue
     fi
     for how in '--width 60' '--width 100' '--width 100 --ascii'; do
+        # Few samples, which no answer is about, so that it does not take long.
         # shellcheck disable=SC2086
-        "$OHMEN" -r "$register" memo "$decision" $how >"$work/text" || complain "$decision: no memo"
+        "$OHMEN" -r "$register" memo "$decision" --samples 256 $how >"$work/text" || complain "$decision: no memo"
         check "$decision $how"
     done
 done

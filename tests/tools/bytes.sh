@@ -46,6 +46,8 @@ people --csv
 protection --csv --site GU
 grid D-GU --json
 weigh D-TQ --csv
+sensitivity D-VH-DARK --json
+sensitivity D-VH-DARK --ascii --width 80
 weigh D-GU --html
 show H-TQ-BUS --json
 show VH-INC1 --ascii

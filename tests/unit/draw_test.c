@@ -8,7 +8,10 @@ struct drawing drawing_new(struct draw_plan plan, size_t inputs, const struct dr
 {
     struct drawing d = {.a = arena_new(NULL), .n = (size_t)1 << plan.log2_points};
     ohmen_error e = {0};
-    ck_assert_int_eq(draws_new(d.a, &plan, inputs, in, &d.draws, &e), OHMEN_OK);
+    struct draw_input *placed = arena_copy(d.a, in, inputs * sizeof *in);
+    for (size_t i = 0; i < inputs; i++) /* that have none of their own */
+        placed[i].place = in[i].place ? in[i].place : (unsigned)i;
+    ck_assert_int_eq(draws_new(d.a, &plan, inputs, placed, &d.draws, &e), OHMEN_OK);
     d.work = NEW_ARRAY(d.a, draws_work(d.draws), double);
     d.x = NEW_ARRAY(d.a, inputs, double *);
     for (size_t i = 0; i < inputs; i++)

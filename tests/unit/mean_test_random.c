@@ -209,10 +209,10 @@ static void check_lists(size_t place, int *linear)
     }
 }
 
-/* How far a sampled mean may be off: six standard deviations of nearly as many independent points,
- * which scrambled ones may exceed in rare functions only (A. B. Owen, Annals of Statistics 25 (1997)
- * 1541, bounds the factor; from memory). Where sampled means are carried on, the printed error
- * counts, and a little for rare cases that no point of the sample met. */
+/* How far a sampled mean may be off. The variance of a latin hypercube of n points is at most
+ * that of n - 1 independent ones (Owen, Annals of Statistics 25 (1997) 1541; from memory), which
+ * is known here; six standard deviations of it. Where sampled means are carried on, the printed
+ * error counts, and a little for rare cases that no point of the sample met. */
 static double sample_tolerance(size_t place, double want)
 {
     double variance = 0, se = means_error(w.m, node[place]);

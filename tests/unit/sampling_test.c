@@ -171,7 +171,7 @@ START_TEST(what_varies_is_averaged_over)
 }
 END_TEST
 
-/* Three that vary and multiply one another twice: by the points that are the same in all samples. */
+/* Three that vary, twice each: by the points that are the same in all samples. */
 START_TEST(three_that_vary)
 {
     struct sampling_plan p = sampling_defaults();

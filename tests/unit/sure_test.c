@@ -55,16 +55,17 @@ static void check_near(const char *what, struct sampled got, double want, double
  * or does not: expected 40, 48, 46; clairvoyance is worth 22. Here against the third one. */
 START_TEST(clairvoyance_in_a_published_case)
 {
-    static const char *const text = SETTINGS
-        "values: {X: {is: {values: {spared: {is: 0 EUR, p: 60 %}, struck: {is: 110 EUR, p: rest}}}}}\n"
-        "hazards: {H: {name: H, frequency: 1 per a, response: {never: {outcome: lost}}, "
-        "outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: X}}}}}}\n"
-        "options:\n"
-        "  A: {name: A, invest: 50 EUR, excludes: [B], change: {hazards: {H: {frequency: "
-        "0 * was}}}}\n"
-        "  B: {name: B, invest: 30 EUR, change: {hazards: {H: {frequency: 3 / 11 * "
-        "was}}}}\n"
-        "decisions: {D: {question: What?, options: [A, B]}}\n";
+    static const char *const text =
+        SETTINGS "values: {X: {is: {values: {spared: {is: 0 EUR, p: 60 %}, struck: {is: 110 EUR, "
+                 "p: rest}}}}}\n"
+                 "hazards: {H: {name: H, frequency: 1 per a, response: {never: {outcome: lost}}, "
+                 "outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: X}}}}}}\n"
+                 "options:\n"
+                 "  A: {name: A, invest: 50 EUR, excludes: [B], change: {hazards: {H: {frequency: "
+                 "0 * was}}}}\n"
+                 "  B: {name: B, invest: 30 EUR, change: {hazards: {H: {frequency: 3 / 11 * "
+                 "was}}}}\n"
+                 "decisions: {D: {question: What?, options: [A, B]}}\n";
     struct loaded l;
     struct sure x;
     struct sampling_plan p = sampling_defaults();
@@ -83,7 +84,7 @@ START_TEST(clairvoyance_in_a_published_case)
     ck_assert(fabs(of(&x, "A")->net.at[SPREAD_P95].value - 60) < 1e-12);
     ck_assert(of(&x, "do-nothing")->net.is_certain && of(&x, "do-nothing")->net.at[0].value == 0);
     ck_assert_uint_eq(x.moves.n, 1);
-    ck_assert_str_eq(x.moves.at[0].name, "X#0");
+    ck_assert_str_eq(x.moves.at[0].name, "X.value");
     ck_assert(fabs(x.moves.at[0].correlation - 1) < 1e-12);
 }
 END_TEST
@@ -151,6 +152,46 @@ START_TEST(equals)
 }
 END_TEST
 
+enum { OTHERS = 40 };
+
+/* What stands in the difference alone ranks with it as it does by itself, whatever else was sampled
+ * with it: the third alternative has many inputs that weigh more there than Z does in the second.
+ * The difference of A and B is 100 Z - 20 EUR, which rises with Z throughout. */
+START_TEST(ranks_among_others)
+{
+    struct loaded l;
+    struct sure x;
+    struct arena *a = arena_new(NULL);
+    struct text t;
+    struct sampling_plan p = sampling_defaults();
+    text_init(&t, a);
+    text_add(&t,
+             SETTINGS "values:\n  Z: {name: Z, is: {shape: uniform, from: 1 EUR, to: 3 EUR}}\n"
+                      "  LOSS: {name: Loss, is: {shape: uniform, from: 8 kEUR, to: 10 kEUR}}\n");
+    for (int i = 0; i < OTHERS; i++)
+        text_printf(&t, "  V%02d: {name: V, is: {shape: uniform, from: 1 EUR, to: 900 EUR}}\n", i);
+    text_add(&t, "hazards: {H: {name: H, frequency: 1 per a, response: {never: {outcome: lost}}, "
+                 "outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: LOSS}}}}}}\n"
+                 "options:\n"
+                 "  A: {name: A, invest: 20 EUR, excludes: [B, C], change: {hazards: {H: "
+                 "{frequency: 0 * was}}}}\n"
+                 "  B: {name: B, invest: 100 * Z, excludes: [C], change: {hazards: {H: {frequency: "
+                 "0 * was}}}}\n"
+                 "  C: {name: C, invest: 5000 EUR");
+    for (int i = 0; i < OTHERS; i++)
+        text_printf(&t, " + V%02d", i);
+    text_add(&t, ", change: {hazards: {H: {frequency: 0 * was}}}}\ndecisions: {D: {question: "
+                 "What?, options: [A, B, C]}}\n");
+    find(&l, text_str(&t), &p, &x);
+    ck_assert_str_eq(x.best->name, "A");
+    ck_assert_str_eq(x.next->name, "B");
+    ck_assert_uint_eq(x.moves.n, 1);
+    ck_assert_str_eq(x.moves.at[0].name, "Z.value");
+    ck_assert(fabs(x.moves.at[0].correlation - 1) < 1e-12);
+    arena_free(a);
+}
+END_TEST
+
 /* Names lead back to the same values; others are told with the nearest one. */
 START_TEST(names)
 {
@@ -167,12 +208,14 @@ START_TEST(names)
     ohmen_error e = OHMEN_ERROR_INIT;
     struct sampling_plan p = sampling_defaults();
     find(&l, text, &p, &x);
-    ck_assert(sure_is_named("D.best[A]") && sure_is_named("D.moves-with[H#0]"));
+    ck_assert(sure_is_named("D.best[A]") && sure_is_named("D.moves-with[H.frequency]"));
     ck_assert(!sure_is_named("D.best.A") && !sure_is_named("D.bests[A]") && !sure_is_named("D"));
     ck_assert_int_eq(sure_value_find(l.figures, "D.regret[A]", &p, &v, &e), OHMEN_OK);
     ck_assert(v.value.value == of(&x, "A")->regret.value && v.kind == SURE_REGRET);
     ck_assert_int_eq(sure_value_find(l.figures, "D.best[do-nothing]", &p, &v, &e), OHMEN_OK);
     ck_assert(v.value.value == of(&x, "do-nothing")->best.value);
+    ck_assert_int_eq(sure_value_find(l.figures, "D.moves-with[H.frequency]", &p, &v, &e), OHMEN_OK);
+    ck_assert(v.value.value == x.moves.at[0].correlation && v.figure == x.moves.at[0].figure);
     ck_assert_int_eq(sure_value_find(l.figures, "D.worth-it[AA]", &p, &v, &e), OHMEN_UNKNOWN);
     ck_assert_str_eq(e.text, "the decision \"D\" has no figure \"worth-it[AA]\" (did you mean "
                              "\"D.worth-it[A]\"?)");
@@ -188,6 +231,7 @@ int main(void)
     tcase_add_test(t, clairvoyance_in_a_published_case);
     tcase_add_test(t, thresholds_of_a_lognormal);
     tcase_add_test(t, equals);
+    tcase_add_test(t, ranks_among_others);
     tcase_add_test(t, names);
     suite_add_tcase(s, t);
     SRunner *runner = srunner_create(s);

@@ -36,7 +36,8 @@ static double annuity(void)
     return (double)sum;
 }
 
-static void find(struct loaded *l, const struct restated *r, struct weighing **w, struct input_swings *s)
+static void find(struct loaded *l, const struct restated *r, struct weighing **w,
+                 struct input_swings *s)
 {
     ohmen_error e = OHMEN_ERROR_INIT;
     *w = restated_weigh(l, arena, restated_text(arena, r, NULL));
@@ -274,7 +275,8 @@ END_TEST
 #define NEAR_WORTH 0.01
 
 static const double *worth_anew(const struct restated *r, const struct weighing *w,
-                                const struct input_swing *s, enum swing_side side, const char **best)
+                                const struct input_swing *s, enum swing_side side,
+                                const char **best)
 {
     struct loaded l;
     double *x = NEW_ARRAY(arena, r->n, double);
@@ -298,7 +300,8 @@ static double greatest(const double *worth, size_t n)
     return size;
 }
 
-static size_t weigh_anew(const struct restated *r, const struct weighing *w, const struct input_swing *s)
+static size_t weigh_anew(const struct restated *r, const struct weighing *w,
+                         const struct input_swing *s)
 {
     const char *best[2];
     size_t n = w->alternatives.n;

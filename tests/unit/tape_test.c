@@ -230,8 +230,10 @@ START_TEST(slots_are_used_again)
 }
 END_TEST
 
-int main(void)
+int main(int argc, char **argv)
 {
+    ck_assert(argc == 2);
+    tape_figures_folder = argv[1];
     Suite *s = suite_create("tapes");
     TCase *t = tcase_create("tapes");
     tcase_set_timeout(t, 300);
@@ -244,6 +246,7 @@ int main(void)
     tcase_add_test(t, long_sums_in_parts);
     suite_add_tcase(s, t);
     SRunner *runner = srunner_create(s);
+    srunner_add_suite(runner, tape_figures_suite());
     srunner_run_all(runner, CK_NORMAL);
     int failed = srunner_ntests_failed(runner);
     srunner_free(runner);

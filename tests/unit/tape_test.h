@@ -31,7 +31,8 @@ node_id tape_world_add(struct tape_world *w, enum graph_op op);
 /* Values of inputs and given nodes in lanes: special ones among them. Rows are not aligned. */
 struct tape_lanes {
     size_t n, n_in;
-    double *in[TAPE_INPUTS + 4];
+    double **in;
+    bool at_once; /* run for all n only, not for smaller numbers of lanes */
 };
 struct tape_lanes tape_lanes_draw(struct tape_world *w, size_t n, size_t n_in);
 
@@ -49,7 +50,8 @@ bool tape_same(double x, double y);
     for (enum isa isa = ISA_plain; isa < ISA_COUNT; isa++)                                         \
         if (isa_runs(isa))
 
-Suite *tape_graphs_suite(void);
+/* The sample's documents. */
+extern const char *tape_figures_folder;
 Suite *tape_figures_suite(void);
 
 #endif

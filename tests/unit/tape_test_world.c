@@ -189,7 +189,7 @@ static double draw_lane_rate(struct random *r)
 
 struct tape_lanes tape_lanes_draw(struct tape_world *w, size_t n, size_t n_in)
 {
-    struct tape_lanes values = {.n = n, .n_in = n_in};
+    struct tape_lanes values = {.n = n, .n_in = n_in, .in = NEW_ARRAY(w->arena, n_in, double *)};
     for (size_t i = 0; i < n_in; i++) {
         bool is_rate = i >= TAPE_NUMBERS && i < TAPE_INPUTS;
         values.in[i] = NEW_ARRAY(w->arena, n + 3, double) + 1 + i % 2;
@@ -280,7 +280,7 @@ static void compare(struct checked *c, size_t begin, size_t n)
 /* `n` lanes from the first on, in blocks. */
 static void run_and_compare(struct checked *c, size_t n)
 {
-    const double *in[TAPE_INPUTS + 4];
+    const double **in = NEW_ARRAY(c->w->arena, c->values->n_in, const double *);
     for (size_t begin = 0; begin == 0 || begin < n; begin += c->block) {
         size_t count = n - begin < c->block ? n - begin : c->block;
         for (size_t i = 0; i < c->values->n_in; i++)
@@ -304,9 +304,11 @@ static void check_tape(struct checked *c, const struct tape_inputs *in, enum isa
     c->work = tape_work_new(w->arena, c->t, c->block);
     for (size_t k = 0; k < c->n_roots; k++)
         c->out[k] = NEW_ARRAY(w->arena, c->block + 2, double) + k % 2;
-    for (size_t i = 0; i < sizeof sizes / sizeof *sizes; i++)
+    for (size_t i = 0; !c->values->at_once && i < sizeof sizes / sizeof *sizes; i++)
         if (sizes[i] <= c->values->n)
             run_and_compare(c, sizes[i]);
+    if (c->values->at_once)
+        run_and_compare(c, c->values->n);
     c->block = asked;
 }
 

@@ -16,7 +16,7 @@
 /* A report that no failure may replace. */
 static ohmen_report *const untouched = (ohmen_report *)&test_source;
 
-enum call { HAZARDS, PROTECTION, LIST, SHOW, WEIGH, GRID, EXPLAIN, REPORT, HISTORY };
+enum call { HAZARDS, PROTECTION, LIST, SHOW, WEIGH, SENSITIVITY, GRID, EXPLAIN, REPORT, HISTORY };
 
 static ohmen_status call_one(enum call call, ohmen_register *r, const ohmen_query *q,
                              const char *operand, ohmen_report **out, ohmen_error *e)
@@ -27,6 +27,7 @@ static ohmen_status call_one(enum call call, ohmen_register *r, const ohmen_quer
     case LIST: return ohmen_list(r, q, operand, out, e);
     case SHOW: return ohmen_show(r, q, operand, out, e);
     case WEIGH: return ohmen_weigh(r, q, operand, out, e);
+    case SENSITIVITY: return ohmen_sensitivity(r, q, operand, NULL, NULL, out, e);
     case GRID: return ohmen_grid(r, q, operand, out, e);
     case EXPLAIN: return ohmen_explain(r, q, operand, 0, out, e);
     case REPORT: return ohmen_report_all(r, q, out, e);
@@ -60,6 +61,7 @@ START_TEST(unknown_things)
     expect(r, SHOW, NULL, "H-VH-BUS3", OHMEN_UNKNOWN, "H-VH-BUS");
     expect(r, WEIGH, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, WEIGH, NULL, "H-VH-BUS1", OHMEN_UNKNOWN, "H-VH-BUS1");
+    expect(r, SENSITIVITY, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, GRID, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, EXPLAIN, NULL, "H-VH-BUS1.rsk", OHMEN_UNKNOWN, "did you mean \"risk\"?");
     expect(r, EXPLAIN, NULL, "", OHMEN_UNKNOWN, "");
@@ -75,11 +77,11 @@ START_TEST(queries_that_find_nothing)
     struct arena *a = test_arena();
     ohmen_register *r = test_open(test_skerry(a), OHMEN_READ);
     for (int call = HAZARDS; call <= REPORT; call++) {
-        const char *operand = call == LIST                    ? "elements"
-                              : call == SHOW                  ? "VH-51A"
-                              : call == WEIGH || call == GRID ? "D-TQ"
-                              : call == EXPLAIN               ? "H-VH-T1.risk"
-                                                              : NULL;
+        const char *operand = call == LIST                                           ? "elements"
+                              : call == SHOW                                         ? "VH-51A"
+                              : call == WEIGH || call == GRID || call == SENSITIVITY ? "D-TQ"
+                              : call == EXPLAIN ? "H-VH-T1.risk"
+                                                : NULL;
         ohmen_query q = {.as_of = "2"};
         expect(r, call, &q, operand, OHMEN_UNKNOWN, "the newest is 1");
         q.as_of = "0";

@@ -119,6 +119,32 @@ START_TEST(figures_of_the_report)
 }
 END_TEST
 
+/* Every one: points, probabilities, regrets, swings, elasticities, correlations, values at which it
+ * turns. */
+START_TEST(figures_of_a_sensitivity)
+{
+    struct named n = named_new(test_mill);
+    ohmen_report *r = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    must(ohmen_sensitivity(n.reg, NULL, "D-RELAY", NULL, NULL, &r, &e), &e);
+    explain_all(&n, NULL, r);
+    static const char *const some[] = {
+        "D-RELAY.best[NEW-RELAY]",
+        "D-RELAY.worth-it[NEW-RELAY]",
+        "D-RELAY.regret[do-nothing]",
+        "D-RELAY.p5[NEW-RELAY]",
+        "D-RELAY.swing[lost-load.value].NEW-RELAY.low",
+        "D-RELAY.moves-with[lost-load.value]",
+        "D-RELAY.elasticity[lost-load.value].NEW-RELAY",
+    };
+    for (size_t i = 0; i < sizeof some / sizeof *some; i++)
+        ck_assert_msg(strmap_has(&n.seen, some[i]), "%s is not in the report", some[i]);
+    ck_assert_uint_ge(n.compared, 8);
+    ohmen_close(n.reg);
+    arena_free(n.a);
+}
+END_TEST
+
 START_TEST(figures_of_protection)
 {
     struct named n = named_new(test_skerry);
@@ -217,6 +243,7 @@ void work_figure_tests(Suite *suite)
     TCase *t = tcase_create("figures");
     tcase_set_timeout(t, 600);
     tcase_add_test(t, figures_of_the_report);
+    tcase_add_test(t, figures_of_a_sensitivity);
     tcase_add_test(t, figures_of_protection);
     tcase_add_test(t, figures_of_a_perspective);
     tcase_add_test(t, figures_of_single_reports);
