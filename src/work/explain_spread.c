@@ -51,11 +51,11 @@ static ohmen_status sample_net(struct job *j, struct weighing *w, struct sampled
 static ohmen_status sample_other(struct job *j, struct sampled_figure *x, ohmen_error *e)
 {
     struct spread_samples all;
+    x->plan = j->plan; /* an interruption changes that of the job */
     ohmen_status status = spreads_sample(j, j->arena, x->id, &all, e);
     if (status != OHMEN_OK)
         return status;
     figure_id *ids = NEW_ARRAY(j->arena, all.n, figure_id);
-    x->plan = j->plan;
     x->sampling = all.sampling;
     x->n = all.n;
     x->ids = ids;

@@ -28,7 +28,9 @@ static const char document[] =
     "{name: Lost, damage: {loss: {category: c, is: 3 EUR}}}}}, K: {name: K, frequency: X, "
     "response: "
     "{never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: 1 "
-    "EUR}}}}}}\n";
+    "EUR}}}}}}\n"
+    "options: {A: {name: A, invest: 1 EUR, change: {hazards: {H: {frequency: 0.5 * was}}}}}\n"
+    "decisions: {D: {question: What?, options: [A]}}\n";
 static const char *const many[] = {"ohmen",   "explain",     "H.frequency[p95]", "--samples",
                                    "1048576", "--precision", "0.0000001 %",      "--width",
                                    "200",     NULL};
@@ -214,7 +216,7 @@ static bool says(const char *report, const char *words)
 }
 
 /* Two hazards are two samples of four batches each; their sum has one of its own. Behind the one
- * that was interrupted none is begun. */
+ * that was interrupted none is begun; the decision has as small a sample as can be. */
 START_TEST(the_report_says_what_is_missing)
 {
     const char *whole = stopped(1000, OHMEN_OK);
@@ -225,6 +227,9 @@ START_TEST(the_report_says_what_is_missing)
     ck_assert(says(first, "interrupted after 1 of 4 batches"));
     ck_assert(says(first, "H.risk[p95]") && !says(first, "K.risk[p95]"));
     ck_assert(says(first, "before 3 figures could be sampled"));
+    ck_assert(says(first,
+                   "256 samples in 16 independent sets of 16 scrambled points, seed 1; as few "
+                   "as can be, since the sampling was interrupted before"));
     const char *later = stopped(6, OHMEN_INTERRUPTED);
     ck_assert(says(later, "the fewest 2048 samples") && says(later, "the most 4096 samples"));
     ck_assert(says(later, "interrupted after 2 of 4 batches"));
