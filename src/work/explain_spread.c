@@ -35,14 +35,15 @@ static ohmen_status sample_net(struct job *j, struct weighing *w, struct sampled
         return status;
     figure_id *ids = NEW_ARRAY(j->arena, w->alternatives.n, figure_id);
     x->is_net = true;
+    x->n = sure.sample.n_roots;
     x->plan = sure.plan;
     x->sampling = sure.sample;
     x->ids = ids;
     for (size_t k = 1; k < w->alternatives.n; k++) {
-        ids[x->n++] = w->alternatives.at[k].net;
+        ids[sure.root[k]] = w->alternatives.at[k].net;
         if (w->alternatives.at[k].net != x->id)
             continue;
-        x->values = sure.sample.values[k - 1];
+        x->values = sure.sample.values[sure.root[k]];
         x->spread = sure.of[k].net;
     }
     return OHMEN_OK;

@@ -56,8 +56,8 @@ static void keep_unknown(struct job *j, struct figure_ids *to, figure_id id)
         *array_push(j->arena, to) = id;
 }
 
-/* Those that are sampled with this one, itself among them, since they are made of the same: the sums
- * over the register; the risk of a hazard and how often it does damage. */
+/* Those that are sampled with this one, itself among them, since they are made of the same: the
+ * sums over the register; the risk of a hazard and how often it does damage. */
 static struct figure_ids find_together(struct job *j, figure_id id)
 {
     const struct figures *f = j->figures;
