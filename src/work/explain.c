@@ -294,6 +294,8 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
     bool over_cycles, is_point = spread_is_named(j->arena, q->figure, &figure, &at);
     if (status == OHMEN_OK)
         status = spread_check(j, q->figure, e);
+    if (status == OHMEN_OK && is_point)
+        status = spread_prepare(j, figure, e);
     if (status == OHMEN_OK)
         status = find_figure(j, figure, &id, &over_cycles, e);
     if (status == OHMEN_OK && is_point)

@@ -13,6 +13,7 @@ static const double LEAST_CORRELATION = 0.1;
 /* A figure's sample, with those of figures that were sampled together with it. */
 struct sampled_figure {
     figure_id id;
+    bool is_net;
     size_t n; /* figures of the sample */
     const figure_id *ids;
     struct sampling sampling;
@@ -33,14 +34,16 @@ static ohmen_status sample_net(struct job *j, struct weighing *w, struct sampled
     if (status != OHMEN_OK)
         return status;
     figure_id *ids = NEW_ARRAY(j->arena, w->alternatives.n, figure_id);
+    x->is_net = true;
+    x->n = sure.sample.n_roots;
     x->plan = sure.plan;
     x->sampling = sure.sample;
     x->ids = ids;
     for (size_t k = 1; k < w->alternatives.n; k++) {
-        ids[x->n++] = w->alternatives.at[k].net;
+        ids[sure.root[k]] = w->alternatives.at[k].net;
         if (w->alternatives.at[k].net != x->id)
             continue;
-        x->values = sure.sample.values[k - 1];
+        x->values = sure.sample.values[sure.root[k]];
         x->spread = sure.of[k].net;
     }
     return OHMEN_OK;
@@ -49,11 +52,11 @@ static ohmen_status sample_net(struct job *j, struct weighing *w, struct sampled
 static ohmen_status sample_other(struct job *j, struct sampled_figure *x, ohmen_error *e)
 {
     struct spread_samples all;
+    x->plan = j->plan; /* an interruption changes that of the job */
     ohmen_status status = spreads_sample(j, j->arena, x->id, &all, e);
     if (status != OHMEN_OK)
         return status;
     figure_id *ids = NEW_ARRAY(j->arena, all.n, figure_id);
-    x->plan = j->plan;
     x->sampling = all.sampling;
     x->n = all.n;
     x->ids = ids;
@@ -115,7 +118,7 @@ static const char *together_words(struct job *j, const struct sampled_figure *x)
     struct text names;
     size_t n = 0;
     text_init(&names, j->arena);
-    if (x->n > MOST_TOGETHER)
+    if (x->is_net)
         return " Sampled together with the other alternatives.";
     for (size_t k = 0; k < x->n; k++)
         if (x->ids[k] != x->id)
@@ -237,6 +240,17 @@ ohmen_status part_spread_point(struct job *j, figure_id id, enum spread_point at
     points_table(j, &x);
     note_sample(j, &x);
     return part_ranks(j, &x, e);
+}
+
+ohmen_status spread_prepare(struct job *j, const char *figure, ohmen_error *e)
+{
+    struct hazards all = {0};
+    const char *id = arena_strn(j->arena, figure, strcspn(figure, "."));
+    const struct object *o = model_find(j->model, id);
+    if (!o || (o->kind != KIND_REGISTER && o->kind != KIND_GROUP))
+        return OHMEN_OK;
+    ohmen_status status = job_compile_hazards(j, &all, e);
+    return status == OHMEN_OK ? spreads_compile(j, &all, e) : status;
 }
 
 /* "H.risk[p90]" is no figure, and no point either. */

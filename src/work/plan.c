@@ -16,6 +16,16 @@ enum {
     LOG2_FOR_PRECISION = 6
 };
 
+/* What is sampled from now on is as small as can be: whoever interrupts does not want to wait. */
+static void interrupt(struct job *j)
+{
+    j->interrupted = true;
+    j->sampled.batches = j->plan.most_batches;
+    j->sampled.points = (size_t)1 << j->plan.log2_points;
+    j->plan.most_batches = 1;
+    j->plan.log2_points = DRAW_LEAST_LOG2;
+}
+
 /* Between batches: tells whoever watches, and asks whether to go on. */
 static bool watch(void *ctx, size_t batches, size_t most)
 {
@@ -24,7 +34,8 @@ static bool watch(void *ctx, size_t batches, size_t most)
     job_progress(j, "sampling", j->sampled.done * most + batches, all * most);
     if (batches == 0 || !j->reg->stop || !j->reg->stop(j->reg->stop_ctx))
         return true;
-    j->interrupted = j->interrupted || batches < most;
+    if (batches < most && !j->interrupted)
+        interrupt(j);
     return false;
 }
 
@@ -99,7 +110,9 @@ const char *sampling_words(struct job *j, const struct sampling *s)
     const char *end = "";
     if (s->interrupted)
         end = arena_printf(j->arena, "; interrupted after %zu of %zu batches", s->batches,
-                           j->plan.most_batches);
+                           j->sampled.batches);
+    else if (j->interrupted && s->points < j->sampled.points)
+        end = "; as few as can be, since the sampling was interrupted before";
     else if (j->plan.precision > 0)
         end = s->reached ? "; the precision that was asked for is reached"
                          : "; the precision that was asked for is not reached";

@@ -186,6 +186,8 @@ static ohmen_status compute_report(struct job *j, struct whole *w, ohmen_error *
         status = job_compile_hazards(j, &w->hazards, e);
     if (status == OHMEN_OK)
         status = compile_chapters(j, w, e);
+    if (status == OHMEN_OK && !j->query.site)
+        status = spreads_compile(j, &w->hazards, e);
     if (status == OHMEN_OK)
         status = figures_evaluate(j->figures, e);
     return status == OHMEN_OK

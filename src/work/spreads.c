@@ -16,40 +16,64 @@ static const double LEAST_WIDTH = 1e-9;
 
 /* --- samples --- */
 
-/* Figures of one object that are sampled together, since they are made of the same; where a
- * precision is asked for it is that of the first. */
-static const struct family {
-    size_t n;
-    enum property properties[MOST_TOGETHER];
-} families[] = {
-    {2, {PROPERTY_RISK, PROPERTY_DAMAGING}},
-    {4, {PROPERTY_SAIDI, PROPERTY_SAIFI, PROPERTY_CAIDI, PROPERTY_NOT_SUPPLIED}},
-};
-
-static const struct family *family_of(const struct figure *g)
+static void add_together(struct job *j, figure_id id)
 {
-    for (size_t i = 0; !g->q1 && i < sizeof families / sizeof *families; i++)
-        for (size_t k = 0; k < families[i].n; k++)
-            if (families[i].properties[k] == g->property)
-                return &families[i];
-    return NULL;
+    if (id != FIGURE_NONE)
+        *array_push(j->arena, &j->together) = id;
 }
 
-/* Those that are sampled with this one, itself among them. */
-static size_t find_together(const struct job *j, figure_id id, figure_id *ids)
+ohmen_status spreads_compile(struct job *j, const struct hazards *h, ohmen_error *e)
+{
+    struct supply s;
+    struct harm_to *groups;
+    j->together = (struct figure_ids){0};
+    ohmen_status status = figures_supply(j->figures, h->n, h->at, &s, e);
+    if (status == OHMEN_OK)
+        status = figures_people(j->figures, h->n, h->at, &groups, e);
+    if (status != OHMEN_OK)
+        return status;
+    add_together(j, figures_total(j->figures, h->n, h->at));
+    add_together(j, s.saidi);
+    add_together(j, s.saifi);
+    add_together(j, s.caidi);
+    add_together(j, s.not_supplied);
+    for (size_t i = 0; i < j->model->of[KIND_GROUP].n; i++)
+        add_together(j, groups[i].death);
+    return OHMEN_OK;
+}
+
+static bool is_among(const struct figure_ids *all, figure_id id)
+{
+    for (size_t i = 0; i < all->n; i++)
+        if (all->at[i] == id)
+            return true;
+    return false;
+}
+
+static void keep_unknown(struct job *j, struct figure_ids *to, figure_id id)
+{
+    if (id != FIGURE_NONE && !figure_is_certain(j->figures, id))
+        *array_push(j->arena, to) = id;
+}
+
+/* Those that are sampled with this one, itself among them, since they are made of the same: the
+ * sums over the register; the risk of a hazard and how often it does damage. */
+static struct figure_ids find_together(struct job *j, figure_id id)
 {
     const struct figures *f = j->figures;
     const struct figure *g = figure_at(f, id);
-    const struct family *family = family_of(g);
-    size_t n = 0;
-    for (size_t k = 0; family && k < family->n; k++) {
-        figure_id x = compiled_figure(f, f->units.at[g->unit], family->properties[k], NULL, NULL);
-        if (x != FIGURE_NONE && !figure_is_certain(f, x))
-            ids[n++] = x;
+    const struct compiled *unit = f->units.at[g->unit];
+    struct figure_ids ids = {0};
+    if (is_among(&j->together, id)) {
+        for (size_t k = 0; k < j->together.n; k++)
+            keep_unknown(j, &ids, j->together.at[k]);
+    } else if (!g->q1 && (g->property == PROPERTY_RISK || g->property == PROPERTY_DAMAGING)) {
+        keep_unknown(j, &ids, compiled_figure(f, unit, PROPERTY_RISK, NULL, NULL));
+        keep_unknown(j, &ids, compiled_figure(f, unit, PROPERTY_DAMAGING, NULL, NULL));
+    } else {
+        keep_unknown(j, &ids, id);
     }
-    if (!family)
-        ids[n++] = id;
-    return n;
+    return ids;
 }
 
 static bool is_certain_in_effect(const struct figures *f, const struct spread_sample *x)
@@ -63,16 +87,17 @@ ohmen_status spreads_sample(struct job *j, struct arena *a, figure_id id,
 {
     struct sampling_plan plan = j->plan;
     struct spread_samples x = {0};
-    figure_id ids[MOST_TOGETHER];
+    struct figure_ids ids = find_together(j, id);
     plan.n_judged = 1;
-    x.n = find_together(j, id, ids);
-    ohmen_status status = figures_sample(j->figures, a, &plan, x.n, ids, &x.sampling, e);
+    x.n = ids.n;
+    x.of = NEW_ARRAY(a, ids.n, struct spread_sample);
+    ohmen_status status = figures_sample(j->figures, a, &plan, ids.n, ids.at, &x.sampling, e);
     if (status != OHMEN_OK)
         return status;
     for (size_t k = 0; k < x.n; k++) {
         x.of[k] = (struct spread_sample){
-            .id = ids[k],
-            .spread = figure_spread_of(j->figures, a, &x.sampling, k, ids[k]),
+            .id = ids.at[k],
+            .spread = figure_spread_of(j->figures, a, &x.sampling, k, ids.at[k]),
         };
         x.of[k].spread.is_certain = is_certain_in_effect(j->figures, &x.of[k]);
     }
@@ -188,14 +213,13 @@ static ohmen_status sample_row(struct job *j, struct spreads_part *p, struct spr
 /* Samples that are to be taken, for who watches. */
 static void count_samples(struct job *j, struct spreads_part *p)
 {
-    figure_id ids[MOST_TOGETHER];
     j->sampled.done = j->sampled.all = 0;
     for (int t = 0; t < SPREADS_TABLES; t++)
         for (size_t i = 0; i < p->tables[t].n; i++) {
             struct spread_row *row = &p->tables[t].at[i];
             row->done = figure_is_certain(j->figures, row->sample.id);
             row->sample.spread.is_certain = row->done;
-            if (!row->done && find_together(j, row->sample.id, ids) && ids[0] == row->sample.id)
+            if (!row->done && find_together(j, row->sample.id).at[0] == row->sample.id)
                 j->sampled.all++;
         }
 }

@@ -12,18 +12,21 @@ struct spread_sample {
     struct figure_spread spread;
 };
 
-enum { MOST_TOGETHER = 4 };
-
 /* A sample of figures that are sampled together. */
 struct spread_samples {
     size_t n;
-    struct spread_sample of[MOST_TOGETHER]; /* root k of the sampling */
+    struct spread_sample *of; /* root k of the sampling */
     struct sampling sampling;
 };
 
-/* Samples a figure that is not certain by the plan of the job: alone, or with others of its object
- * that are made of the same (the risk of a hazard with how often it does damage, the indices of
- * supply). The values live in `a`. OHMEN_COMPUTE as figures_sample. */
+/* Compiles sums over all these hazards, which are sampled together: the risk of the register, the
+ * indices of supply, the individual risk of each group. To be called before figures_evaluate by
+ * whoever samples one of them, so that it has the same sample everywhere. */
+ohmen_status spreads_compile(struct job *j, const struct hazards *h, ohmen_error *e);
+
+/* Samples a figure that is not certain by the plan of the job: alone, or with others that are made
+ * of the same: those sums, or the risk of a hazard with how often it does damage. Where a precision
+ * is asked for it is that of the first. The values live in `a`. OHMEN_COMPUTE as figures_sample. */
 ohmen_status spreads_sample(struct job *j, struct arena *a, figure_id id,
                             struct spread_samples *out, ohmen_error *e);
 
@@ -54,7 +57,7 @@ struct spreads_part {
 };
 
 /* Samples the figures of the chapter, some of which may be without; figures_evaluate has been
- * called after figures_total of the hazards. */
+ * called after figures_total of the hazards, or spreads_compile. */
 ohmen_status spreads_compute(struct job *j, const struct hazards *h, const struct supply_part *s,
                              const struct people_part *people, struct spreads_part *p,
                              ohmen_error *e);
@@ -64,6 +67,8 @@ void part_spreads(struct job *j, const struct spreads_part *p);
  * figure moves with. Of an alternative's net present value it is that of the weighing. The
  * figure is evaluated. OHMEN_COMPUTE as figures_sample, and for what has no single value. */
 ohmen_status part_spread_point(struct job *j, figure_id id, enum spread_point at, ohmen_error *e);
+/* Compiles what the figure of this name may be sampled with: before it is compiled itself. */
+ohmen_status spread_prepare(struct job *j, const char *figure, ohmen_error *e);
 /* OHMEN_UNKNOWN for the name of a point that there is not, such as H.risk[p90]. */
 ohmen_status spread_check(struct job *j, const char *name, ohmen_error *e);
 /* How to see the spread of a figure that is not certain. */

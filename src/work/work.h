@@ -63,8 +63,10 @@ struct job {
     const struct variant *base;
     ARRAY(struct not_computed) not_computed; /* hazards and decisions without figures */
     struct sampling_plan plan;               /* of what is sampled: job_load_figures */
+    struct figure_ids together; /* sums over the register that share a sample (spreads.c) */
     struct {
         size_t done, all; /* samples of single figures, for who watches; all 0: there is one */
+        size_t batches, points; /* once it was interrupted: what was asked for */
     } sampled;
     /* By decision, once they were asked for: struct turns (turn.c), struct known_sure (sure.c),
      * struct known_swings (swings.c). */

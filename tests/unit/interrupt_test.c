@@ -25,7 +25,12 @@ static const char document[] =
     "register: {title: T, currency: EUR, prices: 2026, horizon: 1 a, discount: 0 % per a}\n"
     "values: {X: {is: 90 % within 1 per a .. 4 per a}, Y: {is: 90 % within 1 .. 4}}\n"
     "hazards: {H: {name: H, frequency: X * Y, response: {never: {outcome: lost}}, outcomes: {lost: "
-    "{name: Lost, damage: {loss: {category: c, is: 1 EUR}}}}}}\n";
+    "{name: Lost, damage: {loss: {category: c, is: 3 EUR}}}}}, K: {name: K, frequency: X, "
+    "response: "
+    "{never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: {loss: {category: c, is: 1 "
+    "EUR}}}}}}\n"
+    "options: {A: {name: A, invest: 1 EUR, change: {hazards: {H: {frequency: 0.5 * was}}}}}\n"
+    "decisions: {D: {question: What?, options: [A]}}\n";
 static const char *const many[] = {"ohmen",   "explain",     "H.frequency[p95]", "--samples",
                                    "1048576", "--precision", "0.0000001 %",      "--width",
                                    "200",     NULL};
@@ -95,11 +100,19 @@ static bool catches(pid_t pid)
     return mask >> (SIGINT - 1) & 1;
 }
 
-static void wait_until(pid_t pid, bool caught)
+/* It ends by itself when it was not interrupted: then the test failed. */
+static void wait_until_it_catches(pid_t pid)
 {
     int status;
-    while (catches(pid) != caught)
+    while (!catches(pid))
         ck_assert_msg(waitpid(pid, &status, WNOHANG) == 0, "it ended by itself: %s", get("err"));
+}
+
+/* Of one that has ended and waits for us the kernel shows an empty mask. */
+static void wait_until_it_does_not(pid_t pid)
+{
+    while (catches(pid))
+        ;
 }
 
 static int end(pid_t pid)
@@ -139,7 +152,7 @@ static unsigned long batches_of(const char *report)
 START_TEST(first_interrupt_prints)
 {
     pid_t pid = begin(many);
-    wait_until(pid, true);
+    wait_until_it_catches(pid);
     ck_assert_int_eq(kill(pid, SIGINT), 0);
     int status = end(pid);
     ck_assert_msg(WIFEXITED(status) && WEXITSTATUS(status) == ohmen_status_exit(OHMEN_INTERRUPTED),
@@ -162,13 +175,73 @@ END_TEST
 START_TEST(second_interrupt_kills)
 {
     pid_t pid = begin(many);
-    wait_until(pid, true);
+    wait_until_it_catches(pid);
     ck_assert_int_eq(kill(pid, SIGINT), 0);
-    wait_until(pid, false);
+    wait_until_it_does_not(pid);
     ck_assert_int_eq(kill(pid, SIGINT), 0);
     int status = end(pid);
     ck_assert(WIFSIGNALED(status) ? WTERMSIG(status) == SIGINT
                                   : WEXITSTATUS(status) == ohmen_status_exit(OHMEN_INTERRUPTED));
+}
+END_TEST
+
+/* ---- the library ---- */
+
+/* Says yes when it is asked for the n-th time, and from then on. */
+struct patience {
+    unsigned asked, most;
+};
+
+static bool stop(void *ctx)
+{
+    struct patience *p = ctx;
+    return ++p->asked >= p->most;
+}
+
+/* The report of all as JSON when it is stopped so; it has the clock of the seam. */
+static const char *stopped(unsigned most, ohmen_status expected)
+{
+    struct patience p = {0, most};
+    ohmen_error e = OHMEN_ERROR_INIT;
+    ohmen_register *reg = NULL;
+    ohmen_report *report = NULL;
+    ohmen_query query = ohmen_query_defaults();
+    query.samples = 4096;
+    query.precision = "0.0000001 %";
+    ck_assert_int_eq(ohmen_open("r.ohmen", OHMEN_READ, &reg, &e), OHMEN_OK);
+    ohmen_stop_when(reg, stop, &p);
+    ck_assert_int_eq(ohmen_report_all(reg, &query, &report, &e), expected);
+    ck_assert_ptr_nonnull(report);
+    const char *json = arena_str(arena, ohmen_report_json(report));
+    ohmen_report_free(report);
+    ohmen_close(reg);
+    return json;
+}
+
+static bool says(const char *report, const char *words)
+{
+    return strstr(report, words) != NULL;
+}
+
+/* Two hazards are two samples of four batches each; their sum has one of its own. Behind the one
+ * that was interrupted none is begun; the decision has as small a sample as can be. */
+START_TEST(the_report_says_what_is_missing)
+{
+    const char *whole = stopped(1000, OHMEN_OK);
+    ck_assert(says(whole, "4096 samples in 64 independent sets of 64"));
+    ck_assert(!says(whole, "interrupted"));
+    const char *first = stopped(1, OHMEN_INTERRUPTED), *again = stopped(1, OHMEN_INTERRUPTED);
+    ck_assert_str_eq(first, again);
+    ck_assert(says(first, "interrupted after 1 of 4 batches"));
+    ck_assert(says(first, "H.risk[p95]") && !says(first, "K.risk[p95]"));
+    ck_assert(says(first, "before 3 figures could be sampled"));
+    ck_assert(says(first,
+                   "256 samples in 16 independent sets of 16 scrambled points, seed 1; as few "
+                   "as can be, since the sampling was interrupted before"));
+    const char *later = stopped(6, OHMEN_INTERRUPTED);
+    ck_assert(says(later, "the fewest 2048 samples") && says(later, "the most 4096 samples"));
+    ck_assert(says(later, "interrupted after 2 of 4 batches"));
+    ck_assert(says(later, "K.risk[p95]") && says(later, "before 1 figure could be sampled"));
 }
 END_TEST
 
@@ -177,12 +250,14 @@ int main(int argc, char **argv)
     if (argc != 2)
         return EXIT_FAILURE;
     tool = argv[1];
+    setenv("OHMEN_CLOCK", "2026-12-01T08:00:00Z", 1);
     Suite *suite = suite_create("interrupts");
     TCase *t = tcase_create("interrupts");
     tcase_add_checked_fixture(t, setup, teardown);
     tcase_set_timeout(t, 120);
     tcase_add_test(t, first_interrupt_prints);
     tcase_add_test(t, second_interrupt_kills);
+    tcase_add_test(t, the_report_says_what_is_missing);
     suite_add_tcase(suite, t);
     SRunner *runner = srunner_create(suite);
     srunner_run_all(runner, CK_NORMAL);
