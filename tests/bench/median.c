@@ -2,6 +2,7 @@
 /* The clock and the median of the bench programs. Owns nothing. */
 #include "median.h"
 
+#include <math.h>
 #include <stdlib.h>
 #include <time.h>
 
@@ -32,4 +33,18 @@ double bench_median(double times[RUNS])
 {
     qsort(times, RUNS, sizeof *times, by_size);
     return times[RUNS / 2];
+}
+
+double bench_least(const double times[RUNS])
+{
+    double least = times[0];
+    for (int i = 1; i < RUNS; i++)
+        least = times[i] < least ? times[i] : least;
+    return least;
+}
+
+double bench_load(void)
+{
+    double load;
+    return getloadavg(&load, 1) == 1 ? load : NAN;
 }

@@ -13,5 +13,9 @@ double bench_worked(void);
 
 /* The median of RUNS times; sorts them. */
 double bench_median(double times[RUNS]);
+double bench_least(const double times[RUNS]);
+
+/* How many threads wanted to run in the last minute, these among them; NAN: not to be known. */
+double bench_load(void);
 
 #endif
