@@ -2,13 +2,32 @@
 /* Sorting columns (columns.h), compiled once for each instruction set. Owns nothing. */
 #include "math/columns.h"
 
+#include <stdint.h>
+
+#if defined __AVX512F__
+#define VECTOR_BYTES 64
+#elif defined __AVX__
+#define VECTOR_BYTES 32
+#else
+#define VECTOR_BYTES 16
+#endif
+
+enum { WIDTH = VECTOR_BYTES / sizeof(double) };
+
+typedef double vector __attribute__((vector_size(VECTOR_BYTES)));
+typedef int64_t bits __attribute__((vector_size(VECTOR_BYTES)));
+/* As it lies in a row, which need not be aligned. */
+typedef double row_part __attribute__((vector_size(VECTOR_BYTES), aligned(8), may_alias));
+
 /* Numbers stay what they are: of two that are equal none moves. */
-static inline void exchange(double *restrict above, double *restrict below)
+static inline void exchange(double *above, double *below)
 {
-    for (int k = 0; k < COLUMNS_TOGETHER; k++) {
-        double x = above[k], y = below[k];
-        above[k] = y < x ? y : x;
-        below[k] = x > y ? x : y;
+    for (int k = 0; k < COLUMNS_TOGETHER; k += WIDTH) {
+        vector x = *(const row_part *)(above + k), y = *(const row_part *)(below + k);
+        bits turned = (bits)(y < x);
+        bits moved = ((bits)x ^ (bits)y) & turned;
+        *(row_part *)(above + k) = (vector)((bits)x ^ moved);
+        *(row_part *)(below + k) = (vector)((bits)y ^ moved);
     }
 }
 

@@ -13,6 +13,8 @@ static const struct columns_kernels *const kernels[ISA_COUNT] = {
 #undef X
 };
 
+enum { LINE = 64 }; /* bytes */
+
 /* Sets, each sorted: COLUMNS_TOGETHER of them are the columns of a block. */
 struct sorted {
     size_t sets, points;
@@ -25,12 +27,19 @@ static double value_at(const struct sorted *s, size_t set, size_t i)
     return s->rows[set / COLUMNS_TOGETHER * s->points + i][set % COLUMNS_TOGETHER];
 }
 
+/* Rows that begin with lines of the cache. */
+static void *new_rows(struct arena *a, size_t n)
+{
+    char *at = arena_array(a, n + 1, sizeof(double[COLUMNS_TOGETHER]));
+    return at + (-(uintptr_t)at & (LINE - 1));
+}
+
 /* Columns of a block that has fewer sets stay 0. */
 static struct sorted sorted_new(struct arena *a, size_t sets, size_t points, const double *x)
 {
     size_t blocks = (sets + COLUMNS_TOGETHER - 1) / COLUMNS_TOGETHER;
     struct sorted s = {.sets = sets, .points = points};
-    s.rows = arena_array(a, blocks * points, sizeof *s.rows);
+    s.rows = new_rows(a, blocks * points);
     s.low = NEW_ARRAY(a, sets, size_t);
     s.high = NEW_ARRAY(a, sets, size_t);
     for (size_t set = 0; set < sets; set++)
