@@ -13,6 +13,9 @@
 #include <stdlib.h>
 #include <string.h>
 #include <sys/mman.h>
+#ifdef __GLIBC__
+#include <malloc.h>
+#endif
 
 enum {
     ALIGN = 16,
@@ -22,6 +25,10 @@ enum {
     WORTH_A_PAGE = LARGE_PAGE / 4,
     BRIEF = 128
 };
+
+/* What a process keeps (mem_system_keep): blocks of up to the one, up to the other in all. The C
+ * library takes no more for a block. */
+enum { MOST_KEPT_BLOCK = 1 << 25, MOST_KEPT = 1 << 28 };
 
 struct chunk {
     struct chunk *next;
@@ -75,6 +82,15 @@ static void *system_re(void *ctx, void *p, size_t old_size, size_t new_size)
 }
 
 const struct mem mem_system = {system_re, NULL};
+
+void mem_system_keep(void)
+{
+#ifdef __GLIBC__
+    mallopt(M_MMAP_THRESHOLD, MOST_KEPT_BLOCK);
+    mallopt(M_TRIM_THRESHOLD, MOST_KEPT);
+    mallopt(M_TOP_PAD, LARGE_PAGE);
+#endif
+}
 
 static struct arena *arena_make(const struct mem *mem)
 {

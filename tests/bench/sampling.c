@@ -277,6 +277,7 @@ int main(int argc, char **argv)
     size_t n = argc == 2 ? strtoul(argv[1], NULL, 10) : 0;
     if (n < MOST_JUDGED)
         return 2;
+    mem_system_keep();
     struct sampling_plan one = plan_of(1), two = plan_of(2);
     b.h = hazards_new(n);
     b.one = hazards_sampler(b.h, b.h->arena, &one);

@@ -177,6 +177,7 @@ int main(int argc, char **argv)
     size_t n = argc == 2 ? strtoul(argv[1], NULL, 10) : 0;
     if (n == 0)
         return 2;
+    mem_system_keep();
     b.h = hazards_new(n);
     b.result = NEW_ARRAY(b.h->arena, n, struct of_hazard);
     double graph = megabytes(), begin = bench_worked();
