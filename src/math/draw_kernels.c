@@ -178,13 +178,11 @@ static void nest(unsigned log2, const uint64_t *bits, uint16_t *spare, uint16_t 
     }
 }
 
-static void arrange(size_t n, const uint16_t *restrict cell, const uint16_t *restrict place,
-                    const double *restrict ordered, double location, double scale,
-                    double *restrict x)
+static void shift(size_t n, double location, double scale, double *x)
 {
     for (size_t i = 0; i < n; i++)
-        x[i] = location + scale * ordered[place[cell[i]]];
+        x[i] = location + scale * x[i];
 }
 
 const struct draw_kernels ISA_NAME(draw_kernels) = {jitter, cells, cells_at, chances,
-                                                    steps,  net,   nest,     arrange};
+                                                    steps,  net,   nest,     shift};
