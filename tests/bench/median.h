@@ -15,7 +15,9 @@ double bench_worked(void);
 double bench_median(double times[RUNS]);
 double bench_least(const double times[RUNS]);
 
-/* How many threads wanted to run in the last minute, these among them; NAN: not to be known. */
-double bench_load(void);
+/* Tells how much faster two threads were than one, by the medians and by the best of RUNS times of
+ * the clock; beside it the same of a loop that only counts, measured now, which is what the machine
+ * has to give at all; and how many threads wanted to run in the last minute. */
+void bench_tell_threads(double one[RUNS], double two[RUNS]);
 
 #endif

@@ -183,13 +183,6 @@ static void tell(const struct bench *b, const char *what, double times[RUNS], do
     puts("");
 }
 
-static void tell_threads(double one[RUNS], double two[RUNS])
-{
-    double median = bench_median(one) / bench_median(two);
-    printf("  two threads: %.2f times by the medians, %.2f times by the best of %d; load %.1f\n",
-           median, bench_least(one) / bench_least(two), RUNS, bench_load());
-}
-
 static void measure(struct bench *b)
 {
     double gsl[RUNS], all[RUNS], groups[RUNS], draws[RUNS], statistics[RUNS], one[RUNS], two[RUNS];
@@ -211,7 +204,7 @@ static void measure(struct bench *b)
     tell(b, "groups of 5", groups, whole);
     tell(b, "of that drawing", draws, whole);
     tell(b, "mean and three quantiles of a risk", statistics, 0);
-    tell_threads(one, two);
+    bench_tell_threads(one, two);
 }
 
 /* ---- errors ---- */
