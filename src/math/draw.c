@@ -47,16 +47,24 @@ static const struct draw_kernels *const kernels[ISA_COUNT] = {
 
 /* Tables by standardised distribution: open addressing, twice as many places as inputs. */
 struct cache {
+    bool has_rows;
     size_t mask;
     struct quantile_table **at;
 };
 
-static struct cache cache_new(struct arena *a, size_t n)
+/* Only where each cell has its stratum, in order, are columns what is read. */
+static bool takes_cells_in_order(enum draw_method method, unsigned log2)
+{
+    return method != DRAW_PLAIN && log2 == QUANTILE_LOG2_CELLS;
+}
+
+static struct cache cache_new(struct arena *a, const struct draw_plan *p, size_t n)
 {
     size_t places = 2;
     while (places < 2 * n)
         places *= 2;
-    return (struct cache){places - 1, NEW_ARRAY(a, places, struct quantile_table *)};
+    return (struct cache){!takes_cells_in_order(p->method, p->log2_points), places - 1,
+                          NEW_ARRAY(a, places, struct quantile_table *)};
 }
 
 static bool same(const struct dist *a, const struct dist *b)
@@ -85,6 +93,8 @@ table_of(struct arena *a, struct cache *c, const struct quantile_edges *edges, c
             return c->at[i];
     c->at[i] = NEW(a, struct quantile_table);
     quantile_table_new(a, edges, d, c->at[i]);
+    if (c->has_rows)
+        quantile_table_rows(a, c->at[i]);
     return c->at[i];
 }
 
@@ -131,7 +141,7 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
     assert(p->log2_points >= DRAW_LEAST_LOG2 && p->log2_points <= DRAW_MOST_LOG2);
     struct draws *d = NEW(a, struct draws);
     struct quantile_edges *edges = NEW(a, struct quantile_edges);
-    struct cache cache = cache_new(a, n);
+    struct cache cache = cache_new(a, p, n);
     uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS];
     *d = (struct draws){p->method,
                         p->log2_points,
@@ -239,7 +249,7 @@ static void fill_table(const struct draws *d, const struct quantile_table *t, co
     size_t n = (size_t)1 << d->log2;
     struct ends ends = ends_of(d, &t->cells);
     bool ordered = r->stratum == d->counting;
-    if (d->log2 == QUANTILE_LOG2_CELLS && ordered)
+    if (takes_cells_in_order(d->method, d->log2))
         d->kernels->cells(ends.low, n - ends.high, &t->cells, r->jitter, x);
     else
         d->kernels->cells_at(n, d->log2, &t->cells, r->stratum, r->jitter, x);

@@ -59,16 +59,14 @@ static void cells_at(size_t n, unsigned log2, const struct quantile_cells *c,
                      const uint16_t *restrict stratum, const uint32_t *restrict jitter,
                      double *restrict x)
 {
-    const double *restrict c0 = c->term[0], *restrict c1 = c->term[1], *restrict c2 = c->term[2],
-                           *restrict c3 = c->term[3], *restrict c4 = c->term[4],
-                           *restrict c5 = c->term[5];
     unsigned inside = 32 + log2 - QUANTILE_LOG2_CELLS; /* bits of the place in a cell */
     uint64_t mask = (UINT64_C(1) << inside) - 1;
     double unit = 1 / (double)(UINT64_C(1) << inside);
     for (size_t i = 0; i < n; i++) {
         uint64_t place = place_of(stratum[i], jitter[i]), k = place >> inside;
         double t = (whole(place & mask) + 0.5) * unit;
-        x[i] = c0[k] + t * (c1[k] + t * (c2[k] + t * (c3[k] + t * (c4[k] + t * c5[k]))));
+        const double *r = c->rows[k];
+        x[i] = r[0] + t * (r[1] + t * (r[2] + t * (r[3] + t * (r[4] + t * r[5]))));
     }
 }
 

@@ -16,7 +16,7 @@ struct draw_kernels {
     /* x[i] by the polynomial of cell i, for first <= i < end: strata are cells */
     void (*cells)(size_t first, size_t end, const struct quantile_cells *c, const uint32_t *jitter,
                   double *x);
-    /* The same for any strata; where a cell has no polynomial x[i] is any number. */
+    /* The same for any strata, by the rows; where a cell has no polynomial x[i] is any number. */
     void (*cells_at)(size_t n, unsigned log2, const struct quantile_cells *c,
                      const uint16_t *stratum, const uint32_t *jitter, double *x);
     /* u and 1 - u, exactly */
