@@ -6,6 +6,7 @@
 #include "math/statistics.h"
 
 #include <math.h>
+#include <string.h>
 
 static const struct columns_kernels *const kernels[ISA_COUNT] = {
 #define X(name, needs) &columns_kernels_##name,
@@ -19,7 +20,8 @@ enum { LINE = 64 }; /* bytes */
 struct sorted {
     size_t sets, points;
     double (*rows)[COLUMNS_TOGETHER];
-    size_t *low, *high; /* by set: which values may still be those that are looked for */
+    size_t *low, *high;   /* by set: which values may still be those that are looked for */
+    size_t *below, *upto; /* and how many are below the last guess, or not above it */
 };
 
 static double value_at(const struct sorted *s, size_t set, size_t i)
@@ -42,6 +44,8 @@ static struct sorted sorted_new(struct arena *a, size_t sets, size_t points, con
     s.rows = new_rows(a, blocks * points);
     s.low = NEW_ARRAY(a, sets, size_t);
     s.high = NEW_ARRAY(a, sets, size_t);
+    s.below = NEW_ARRAY(a, sets, size_t);
+    s.upto = NEW_ARRAY(a, sets, size_t);
     for (size_t set = 0; set < sets; set++)
         for (size_t i = 0; i < points; i++)
             s.rows[set / COLUMNS_TOGETHER * points + i][set % COLUMNS_TOGETHER] =
@@ -53,26 +57,38 @@ static struct sorted sorted_new(struct arena *a, size_t sets, size_t points, con
 
 /* ---- the k-th of all ---- */
 
-/* How many of a set's values are below x, or not above it, as far as that is open. */
-static size_t count_below(const struct sorted *s, size_t set, double x, bool and_equal)
+/* How many of a set's values are below x, as far as that is open. Without a branch that chance
+ * decides. */
+static size_t count_below(const struct sorted *s, size_t set, double x)
 {
-    size_t low = s->low[set], high = s->high[set];
-    while (low < high) {
-        size_t middle = low + (high - low) / 2;
-        double y = value_at(s, set, middle);
-        if (y < x || (and_equal && y == x))
-            low = middle + 1;
-        else
-            high = middle;
+    size_t low = s->low[set], n = s->high[set] - low;
+    while (n > 0) {
+        size_t half = n / 2;
+        bool is_below = value_at(s, set, low + half) < x;
+        low += is_below ? half + 1 : 0;
+        n = is_below ? n - half - 1 : half;
     }
     return low;
 }
 
-static size_t count_all(const struct sorted *s, double x, bool and_equal)
+static size_t count_all_below(const struct sorted *s, double x)
 {
     size_t n = 0;
     for (size_t set = 0; set < s->sets; set++)
-        n += count_below(s, set, x, and_equal);
+        n += s->below[set] = count_below(s, set, x);
+    return n;
+}
+
+/* How many are not above x, where those below it are counted; few are equal to it. */
+static size_t count_all_upto(const struct sorted *s, double x)
+{
+    size_t n = 0;
+    for (size_t set = 0; set < s->sets; set++) {
+        size_t upto = s->below[set];
+        while (upto < s->high[set] && value_at(s, set, upto) == x)
+            upto++;
+        n += s->upto[set] = upto;
+    }
     return n;
 }
 
@@ -86,32 +102,34 @@ static double guess(const struct sorted *s)
     return value_at(s, longest, s->low[longest] + (s->high[longest] - s->low[longest]) / 2);
 }
 
-/* The k-th of all values, from 0; what is open beforehand holds it. */
-static double value_of_rank(const struct sorted *s, size_t k)
+static void narrow(const struct sorted *s, size_t *end, const size_t *at)
+{
+    memcpy(end, at, s->sets * sizeof *end);
+}
+
+/* The k-th of all values, from 0, which is open; *rank is how many are not above it. */
+static double value_of_rank(const struct sorted *s, size_t k, size_t *rank)
 {
     for (;;) {
         double x = guess(s);
-        bool is_below = k < count_all(s, x, false);
-        if (!is_below && k < count_all(s, x, true))
-            return x;
-        for (size_t set = 0; set < s->sets; set++) {
-            size_t *end = is_below ? &s->high[set] : &s->low[set];
-            *end = count_below(s, set, x, !is_below);
+        if (k < count_all_below(s, x)) {
+            narrow(s, s->high, s->below);
+            continue;
         }
+        *rank = count_all_upto(s, x);
+        if (k < *rank)
+            return x;
+        narrow(s, s->low, s->upto);
     }
 }
 
-/* The same for the one that follows it, where x is the k-th. */
-static double value_behind(const struct sorted *s, size_t k, double x)
+/* The least one above the value that was found last. */
+static double value_behind(const struct sorted *s)
 {
     double least = INFINITY;
-    if (k + 1 < count_all(s, x, true))
-        return x;
-    for (size_t set = 0; set < s->sets; set++) {
-        size_t next = count_below(s, set, x, true);
-        if (next < s->points && value_at(s, set, next) < least)
-            least = value_at(s, set, next);
-    }
+    for (size_t set = 0; set < s->sets; set++)
+        if (s->upto[set] < s->points && value_at(s, set, s->upto[set]) < least)
+            least = value_at(s, set, s->upto[set]);
     return least;
 }
 
@@ -140,8 +158,10 @@ static double quantile_of_all(const struct sorted *s, double p)
         s->low[set] = 0;
         s->high[set] = s->points;
     }
-    double x = value_of_rank(s, at.k);
-    return at.part > 0 ? x + at.part * (value_behind(s, at.k, x) - x) : x;
+    size_t rank;
+    double x = value_of_rank(s, at.k, &rank);
+    double next = at.k + 1 < rank ? x : value_behind(s);
+    return at.part > 0 ? x + at.part * (next - x) : x;
 }
 
 static double quantile_of_set(const struct sorted *s, size_t set, double p)
