@@ -1,15 +1,34 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Arenas: a list of chunks, each larger than the last, bump-allocated.
  *
+ * Memory that is touched for the first time costs a fault of each of its pages, which may be more
+ * than all that is done with it. So large blocks ask the system for large pages, where it has some.
+ *
  * Owns its chunks and the list of deferred calls (which lives in the chunks).
  * Invariant: memory handed out is zero and stays where it is. */
 #include "base/arena.h"
 
+#include <stdbool.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
+#include <sys/mman.h>
+#ifdef __GLIBC__
+#include <malloc.h>
+#endif
 
-enum { ALIGN = 16, FIRST_CHUNK = 4096, LARGEST_CHUNK = 1 << 20, BRIEF = 128 };
+enum {
+    ALIGN = 16,
+    FIRST_CHUNK = 4096,
+    LARGE_PAGE = 1 << 21,
+    LARGEST_CHUNK = LARGE_PAGE,
+    WORTH_A_PAGE = LARGE_PAGE / 4,
+    BRIEF = 128
+};
+
+/* What a process keeps (mem_system_keep): blocks of up to the one, up to the other in all. The C
+ * library takes no more for a block. */
+enum { MOST_KEPT_BLOCK = 1 << 25, MOST_KEPT = 1 << 28 };
 
 struct chunk {
     struct chunk *next;
@@ -34,6 +53,21 @@ struct arena {
     size_t next_size;
 };
 
+/* Begins with a large page; its end takes one only where it fills a good part of it. */
+static void *allocate_large(size_t n)
+{
+    void *p;
+    if (n > SIZE_MAX - LARGE_PAGE)
+        return NULL;
+    size_t whole = (n + LARGE_PAGE - WORTH_A_PAGE) & ~(size_t)(LARGE_PAGE - 1);
+    if (posix_memalign(&p, LARGE_PAGE, n > whole ? n : whole) != 0)
+        return NULL;
+#ifdef MADV_HUGEPAGE
+    madvise(p, whole, MADV_HUGEPAGE); /* a wish: where it is refused the pages are small ones */
+#endif
+    return p;
+}
+
 static void *system_re(void *ctx, void *p, size_t old_size, size_t new_size)
 {
     (void)ctx;
@@ -42,10 +76,21 @@ static void *system_re(void *ctx, void *p, size_t old_size, size_t new_size)
         free(p);
         return NULL;
     }
+    if (!p && new_size >= LARGE_PAGE)
+        return allocate_large(new_size);
     return realloc(p, new_size);
 }
 
 const struct mem mem_system = {system_re, NULL};
+
+void mem_system_keep(void)
+{
+#ifdef __GLIBC__
+    mallopt(M_MMAP_THRESHOLD, MOST_KEPT_BLOCK);
+    mallopt(M_TRIM_THRESHOLD, MOST_KEPT);
+    mallopt(M_TOP_PAD, LARGE_PAGE);
+#endif
+}
 
 static struct arena *arena_make(const struct mem *mem)
 {
@@ -119,19 +164,20 @@ _Noreturn void arena_exhausted(struct arena *a)
     longjmp(*a->guard, 1);
 }
 
-/* A new newest chunk with room for `need` bytes, or NULL. */
+/* A new chunk with room for `need` bytes, or NULL: the newest one, but where it is made to measure
+ * it goes behind that, in which there may be room yet. */
 static struct chunk *add_chunk(struct arena *a, size_t need)
 {
-    size_t size = a->next_size;
-    if (size < need + sizeof(struct chunk))
-        size = need + sizeof(struct chunk);
+    bool fits = a->next_size >= need + sizeof(struct chunk);
+    size_t size = fits ? a->next_size : need + sizeof(struct chunk);
     struct chunk *c = a->mem->re(a->mem->ctx, NULL, 0, size);
     if (!c)
         return NULL;
+    struct chunk **link = fits || !a->chunks ? &a->chunks : &a->chunks->next;
     c->size = size;
     c->used = sizeof *c;
-    c->next = a->chunks;
-    a->chunks = c;
+    c->next = *link;
+    *link = c;
     if (a->next_size < LARGEST_CHUNK)
         a->next_size *= 2;
     return c;

@@ -35,6 +35,11 @@ struct mem {
 /* malloc, realloc and free. */
 extern const struct mem mem_system;
 
+/* For programs, not for libraries, before anything else: what is freed stays with the process for
+ * what is asked for next, since pages that are given back cost a fault each when they come again.
+ * Does nothing where the C library has no such thing. */
+void mem_system_keep(void);
+
 struct arena;
 
 /* A new arena; `mem` is borrowed for its whole life, NULL means mem_system.

@@ -106,6 +106,21 @@ void eval_backward(struct eval *v, node_id root, double *derivative)
         node_backward(v, n, derivative);
 }
 
+/* Of nodes that fall, the first of which is the root. */
+void eval_backward_over(struct eval *v, size_t n, const node_id *nodes, double *derivative)
+{
+    v->weights.at = array_room(v->arena, v->weights.at, 0, &v->weights.cap, v->results.n,
+                               sizeof *v->weights.at);
+    for (size_t i = 0; i < n; i++) {
+        derivative[nodes[i]] = i == 0;
+        if (graph_at(v->g, nodes[i])->op == OP_DIAGRAM)
+            array_zero(v->weights.at + (size_t)v->value.at[nodes[i]],
+                       eval_results(v, nodes[i]) * sizeof *v->weights.at);
+    }
+    for (size_t i = 0; i < n; i++)
+        node_backward(v, nodes[i], derivative);
+}
+
 void eval_effects(struct eval *v, node_id diagram, double *gain, double *share)
 {
     size_t n = graph_at(v->g, diagram)->n;

@@ -25,6 +25,10 @@ double eval_value(const struct eval *v, node_id n);
  * overwritten. At a tie of min or max the first arm takes it all. */
 void eval_backward(struct eval *v, node_id root, double *derivative);
 
+/* The same where nodes[0 .. n) are the root and all nodes that it asks for, from the last number to
+ * the first: sets the derivatives of these, and leaves the others alone. */
+void eval_backward_over(struct eval *v, size_t n, const node_id *nodes, double *derivative);
+
 /* What each variable of a DIAGRAM does to the root of the last eval_backward, to which the
  * diagram belongs: with R the root, linear in the diagram's results around the point,
  *     gain[i]  = R(variable i true at all times) - R(variable i false at all times)

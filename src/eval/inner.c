@@ -75,6 +75,11 @@ void inner_find(struct arena *a, const struct graph *g, const struct mean_source
                 size_t n_roots, const node_id *roots, struct inner_nodes *out)
 {
     struct search x = {.g = g, .source = source};
+    size_t first = 0;
+    while (first < n_roots && !is_curved_in_varying(&x, roots[first]))
+        first++;
+    if (first == n_roots)
+        return;
     array_reserve(a, &x.seen, graph_size(g));
     for (size_t i = 0; i < n_roots; i++)
         push(a, &x, roots[i]);

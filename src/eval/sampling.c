@@ -40,27 +40,42 @@ struct sampling_plan sampling_defaults(void)
 
 /* ---- which inputs ---- */
 
+/* The numbers of the uncertain inputs of all roots lie in least .. end - 1. */
+struct range {
+    uint32_t least, end;
+};
+
+static struct range range_of_inputs(const struct graph *g, size_t n_roots, const node_id *roots)
+{
+    struct range r = {UINT32_MAX, 0};
+    size_t count;
+    for (size_t k = 0; k < n_roots; k++) {
+        const uint32_t *of = graph_uncertain(g, roots[k], &count);
+        if (count && of[0] < r.least)
+            r.least = of[0];
+        if (count && of[count - 1] >= r.end)
+            r.end = of[count - 1] + 1;
+    }
+    return r.end ? r : (struct range){0, 0};
+}
+
 /* The unknown inputs of all roots, in rising order, without repetition. */
 static uint32_t *unknown_inputs(struct arena *a, const struct graph *g,
                                 const struct mean_source *source, size_t n_roots,
                                 const node_id *roots, size_t *n)
 {
-    uint32_t most = 0;
-    size_t count;
+    struct range r = range_of_inputs(g, n_roots, roots);
+    bool *is_met = NEW_ARRAY(a, r.end - r.least, bool);
+    uint32_t *inputs = NEW_ARRAY(a, r.end - r.least, uint32_t);
     for (size_t k = 0; k < n_roots; k++) {
-        const uint32_t *of = graph_uncertain(g, roots[k], &count);
-        most = count && of[count - 1] >= most ? of[count - 1] + 1 : most;
-    }
-    bool *is_met = NEW_ARRAY(a, most, bool);
-    uint32_t *inputs = NEW_ARRAY(a, most, uint32_t);
-    for (size_t k = 0; k < n_roots; k++) {
+        size_t count;
         const uint32_t *of = graph_uncertain(g, roots[k], &count);
         for (size_t i = 0; i < count; i++)
-            is_met[of[i]] = true;
+            is_met[of[i] - r.least] = true;
     }
     *n = 0;
-    for (uint32_t i = 0; i < most; i++)
-        if (is_met[i] && !source->varies(source->ctx, i))
+    for (uint32_t i = r.least; i < r.end; i++)
+        if (is_met[i - r.least] && !source->varies(source->ctx, i))
             inputs[(*n)++] = i;
     return inputs;
 }

@@ -24,8 +24,8 @@ struct input {
     const struct quantile_table *table;
     double location, scale; /* x is location + scale times a value of the table */
     struct stream stream;
-    /* DRAW_SCRAMBLED: of its dimension; and which group it is in, with the key of that */
-    uint16_t direction[DRAW_MOST_LOG2];
+    /* DRAW_SCRAMBLED: the points of its dimension; and which group it is in, with its key */
+    const uint16_t *net;
     unsigned group;
     struct stream together;
 };
@@ -47,16 +47,24 @@ static const struct draw_kernels *const kernels[ISA_COUNT] = {
 
 /* Tables by standardised distribution: open addressing, twice as many places as inputs. */
 struct cache {
+    bool has_rows;
     size_t mask;
     struct quantile_table **at;
 };
 
-static struct cache cache_new(struct arena *a, size_t n)
+/* Only where each cell has its stratum, in order, are columns what is read. */
+static bool takes_cells_in_order(enum draw_method method, unsigned log2)
+{
+    return method != DRAW_PLAIN && log2 == QUANTILE_LOG2_CELLS;
+}
+
+static struct cache cache_new(struct arena *a, const struct draw_plan *p, size_t n)
 {
     size_t places = 2;
     while (places < 2 * n)
         places *= 2;
-    return (struct cache){places - 1, NEW_ARRAY(a, places, struct quantile_table *)};
+    return (struct cache){!takes_cells_in_order(p->method, p->log2_points), places - 1,
+                          NEW_ARRAY(a, places, struct quantile_table *)};
 }
 
 static bool same(const struct dist *a, const struct dist *b)
@@ -85,6 +93,8 @@ table_of(struct arena *a, struct cache *c, const struct quantile_edges *edges, c
             return c->at[i];
     c->at[i] = NEW(a, struct quantile_table);
     quantile_table_new(a, edges, d, c->at[i]);
+    if (c->has_rows)
+        quantile_table_rows(a, c->at[i]);
     return c->at[i];
 }
 
@@ -104,15 +114,32 @@ static uint16_t *counting_row(struct arena *a, size_t n)
     return row;
 }
 
-/* The dimension and the group of a place; of the directions the bits that tell strata apart. */
-static void give_place(struct input *in, const struct draw_plan *p, unsigned place,
-                       uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS])
+/* The points of the dimensions that are used, before they are scrambled: strata. */
+struct nets {
+    uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS];
+    const uint16_t *of[SOBOL_DIMENSIONS]; /* NULL: not made */
+};
+
+/* Of the directions the bits that tell strata apart count. */
+static const uint16_t *net_of(struct arena *a, struct nets *nets, const struct draw_plan *p,
+                              unsigned dimension)
+{
+    uint16_t direction[DRAW_MOST_LOG2], *net;
+    if (nets->of[dimension])
+        return nets->of[dimension];
+    for (unsigned k = 0; k < p->log2_points; k++)
+        direction[k] = (uint16_t)(nets->direction[dimension][k] >> (SOBOL_BITS - p->log2_points));
+    net = NEW_ARRAY(a, (size_t)1 << p->log2_points, uint16_t);
+    kernels[p->isa]->net(p->log2_points, direction, net);
+    return nets->of[dimension] = net;
+}
+
+static void give_place(struct arena *a, struct input *in, const struct draw_plan *p, unsigned place,
+                       struct nets *nets)
 {
     in->group = place / SOBOL_DIMENSIONS;
     in->together = stream_below(stream_of("", p->seed), in->group);
-    for (unsigned k = 0; k < p->log2_points; k++)
-        in->direction[k] =
-            (uint16_t)(direction[place % SOBOL_DIMENSIONS][k] >> (SOBOL_BITS - p->log2_points));
+    in->net = net_of(a, nets, p, place % SOBOL_DIMENSIONS);
 }
 
 static struct input input_of(const struct draw_input *in, const struct draw_plan *p,
@@ -131,8 +158,8 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
     assert(p->log2_points >= DRAW_LEAST_LOG2 && p->log2_points <= DRAW_MOST_LOG2);
     struct draws *d = NEW(a, struct draws);
     struct quantile_edges *edges = NEW(a, struct quantile_edges);
-    struct cache cache = cache_new(a, n);
-    uint32_t direction[SOBOL_DIMENSIONS][SOBOL_DIRECTIONS];
+    struct cache cache = cache_new(a, p, n);
+    struct nets nets = {0};
     *d = (struct draws){p->method,
                         p->log2_points,
                         kernels[p->isa],
@@ -140,13 +167,13 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
                         NEW_ARRAY(a, n, struct input),
                         counting_row(a, (size_t)1 << p->log2_points)};
     quantile_edges(edges);
-    if (!sobol_directions(direction))
+    if (!sobol_directions(nets.direction))
         arena_exhausted(a);
     for (size_t i = 0; i < n; i++) {
         struct quantile_standard standard = quantile_standard(&inputs[i].dist);
         const struct quantile_table *table = table_of(a, &cache, edges, &standard.dist);
         d->inputs[i] = input_of(&inputs[i], p, table, &standard);
-        give_place(&d->inputs[i], p, inputs[i].place, direction);
+        give_place(a, &d->inputs[i], p, inputs[i].place, &nets);
         if (!is_finite(d, &d->inputs[i]))
             return error_set(e, OHMEN_COMPUTE, "%s has no finite quantile", inputs[i].name);
     }
@@ -157,14 +184,14 @@ ohmen_status draws_new(struct arena *a, const struct draw_plan *p, size_t n,
 /* Rows of the work space. The arrays of whole numbers share the first ones. */
 struct rows {
     uint32_t *jitter;
-    uint16_t *stratum, *place, *cell, *spare;
+    uint16_t *stratum, *place, *spare;
     uint16_t *which; /* values that have no polynomial, and their */
     uint16_t *their_stratum;
     uint32_t *their_jitter;
     double *ordered, *u, *v;
 };
 
-enum { BYTES_A_POINT = 2 * sizeof(uint32_t) + 6 * sizeof(uint16_t) + 3 * sizeof(double) };
+enum { BYTES_A_POINT = 2 * sizeof(uint32_t) + 5 * sizeof(uint16_t) + 3 * sizeof(double) };
 
 size_t draws_work(const struct draws *d)
 {
@@ -179,8 +206,7 @@ static struct rows rows_of(double *work, size_t n)
     r.their_jitter = r.jitter + n;
     r.stratum = (uint16_t *)(void *)(r.their_jitter + n);
     r.place = r.stratum + n;
-    r.cell = r.place + n;
-    r.spare = r.cell + n;
+    r.spare = r.place + n;
     r.which = r.spare + n;
     r.their_stratum = r.which + n;
     return r;
@@ -239,7 +265,7 @@ static void fill_table(const struct draws *d, const struct quantile_table *t, co
     size_t n = (size_t)1 << d->log2;
     struct ends ends = ends_of(d, &t->cells);
     bool ordered = r->stratum == d->counting;
-    if (d->log2 == QUANTILE_LOG2_CELLS && ordered)
+    if (takes_cells_in_order(d->method, d->log2))
         d->kernels->cells(ends.low, n - ends.high, &t->cells, r->jitter, x);
     else
         d->kernels->cells_at(n, d->log2, &t->cells, r->stratum, r->jitter, x);
@@ -308,13 +334,20 @@ static const uint16_t *cells_of(const struct draws *d, const struct input *in, u
                                 const struct rows *r)
 {
     size_t n = (size_t)1 << d->log2;
-    d->kernels->net(d->log2, in->direction, r->cell);
     if (in->group == 0)
-        return r->cell;
+        return in->net;
     nested_order(d, stream_below(in->together, set), r);
     for (size_t i = 0; i < n; i++)
-        r->which[i] = r->cell[r->place[i]];
+        r->which[i] = in->net[r->place[i]];
     return r->which;
+}
+
+/* One number after the other: the loads, which no instruction set does faster, are all there is. */
+static void arrange(size_t n, const uint16_t *cell, const uint16_t *place, const double *ordered,
+                    double *x)
+{
+    for (size_t i = 0; i < n; i++)
+        x[i] = ordered[place[cell[i]]];
 }
 
 void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, double *x)
@@ -339,5 +372,6 @@ void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, dou
         nested_order(d, order, &r);
         place = r.place;
     }
-    d->kernels->arrange(n, cell, place, r.ordered, in->location, in->scale, x);
+    d->kernels->shift(n, in->location, in->scale, r.ordered);
+    arrange(n, cell, place, r.ordered, x);
 }

@@ -59,16 +59,14 @@ static void cells_at(size_t n, unsigned log2, const struct quantile_cells *c,
                      const uint16_t *restrict stratum, const uint32_t *restrict jitter,
                      double *restrict x)
 {
-    const double *restrict c0 = c->term[0], *restrict c1 = c->term[1], *restrict c2 = c->term[2],
-                           *restrict c3 = c->term[3], *restrict c4 = c->term[4],
-                           *restrict c5 = c->term[5];
     unsigned inside = 32 + log2 - QUANTILE_LOG2_CELLS; /* bits of the place in a cell */
     uint64_t mask = (UINT64_C(1) << inside) - 1;
     double unit = 1 / (double)(UINT64_C(1) << inside);
     for (size_t i = 0; i < n; i++) {
         uint64_t place = place_of(stratum[i], jitter[i]), k = place >> inside;
         double t = (whole(place & mask) + 0.5) * unit;
-        x[i] = c0[k] + t * (c1[k] + t * (c2[k] + t * (c3[k] + t * (c4[k] + t * c5[k]))));
+        const double *r = c->rows[k];
+        x[i] = r[0] + t * (r[1] + t * (r[2] + t * (r[3] + t * (r[4] + t * r[5]))));
     }
 }
 
@@ -112,47 +110,77 @@ static void net(unsigned log2, const uint16_t *direction, uint16_t *cell)
     }
 }
 
-enum { TOGETHER = 16 }; /* numbers that are split at a time */
+/* ---- nested permutations ---- */
 
-/* Each of n <= 16 numbers becomes two, the even one first, or second where its bit is set. */
-static inline void split_some(size_t n, unsigned bits, const uint16_t *restrict from,
-                              uint16_t *restrict to)
+/* Three levels at a time: a number becomes eight. The seven bits that tell which halves change
+ * places are the first level's, then both of the second, then all four of the third. Number i of
+ * the eight has, at each level, a bit of its own turned: row `bits` has what they become. */
+enum { LEVELS = 3, EIGHT = 1 << LEVELS, ALL_BITS = 1 << (EIGHT - 1) };
+
+#define CELL(bits, i)                                                                              \
+    ((i) ^ ((bits)&1) << 2 ^ ((bits) >> (1 + ((i) >> 2)) & 1) << 1 ^                               \
+     ((bits) >> (3 + ((i) >> 1)) & 1))
+#define ROW(bits)                                                                                  \
+    {                                                                                              \
+        CELL(bits, 0), CELL(bits, 1), CELL(bits, 2), CELL(bits, 3), CELL(bits, 4), CELL(bits, 5),  \
+            CELL(bits, 6), CELL(bits, 7)                                                           \
+    }
+#define ROWS_4(bits) ROW(bits), ROW(bits + 1), ROW(bits + 2), ROW(bits + 3)
+#define ROWS_16(bits) ROWS_4(bits), ROWS_4(bits + 4), ROWS_4(bits + 8), ROWS_4(bits + 12)
+#define ROWS_64(bits) ROWS_16(bits), ROWS_16(bits + 16), ROWS_16(bits + 32), ROWS_16(bits + 48)
+
+static const uint16_t turned[ALL_BITS][EIGHT] = {ROWS_64(0), ROWS_64(64)};
+
+/* As they lie in a row, which need not be aligned. */
+typedef uint16_t eight __attribute__((vector_size(2 * EIGHT), aligned(2), may_alias));
+
+/* n bits from number i on, which do not lie in two words. */
+static inline unsigned bits_at(const uint64_t *bits, size_t i, unsigned n)
 {
-    for (size_t j = 0; j < n; j++) {
-        uint16_t even = (uint16_t)(2u * from[j]), odd = even | 1;
-        bool turned = bits & 1u << j;
-        to[2 * j] = turned ? odd : even;
-        to[2 * j + 1] = turned ? even : odd;
+    return (unsigned)(bits[i / 64] >> i % 64) & ((1u << n) - 1);
+}
+
+/* Each of s numbers becomes eight. */
+static void split_eight(size_t s, const uint64_t *bits, const uint16_t *from, uint16_t *to)
+{
+    for (size_t j = 0; j < s; j++) {
+        unsigned all = bits_at(bits, s + j, 1) | bits_at(bits, 2 * (s + j), 2) << 1 |
+                       bits_at(bits, 4 * (s + j), 4) << 3;
+        *(eight *)(to + EIGHT * j) = *(const eight *)turned[all] | (uint16_t)(EIGHT * from[j]);
     }
 }
 
-static void split(size_t s, const uint64_t *bits, const uint16_t *from, uint16_t *to)
+/* Each of s numbers becomes two, the even one first, or second where its bit is set. */
+static void split_two(size_t s, const uint64_t *bits, const uint16_t *from, uint16_t *to)
 {
-    if (s < TOGETHER)
-        split_some(s, (unsigned)(bits[0] >> s), from, to);
-    for (size_t j = 0; j + TOGETHER <= s; j += TOGETHER)
-        split_some(TOGETHER, (unsigned)(bits[(s + j) / 64] >> (s + j) % 64), from + j, to + 2 * j);
+    for (size_t j = 0; j < s; j++) {
+        uint16_t first = (uint16_t)(2u * from[j] | bits_at(bits, s + j, 1));
+        to[2 * j] = first;
+        to[2 * j + 1] = first ^ 1;
+    }
 }
 
 static void nest(unsigned log2, const uint64_t *bits, uint16_t *spare, uint16_t *place)
 {
-    uint16_t *here = log2 % 2 ? spare : place, *there = log2 % 2 ? place : spare;
+    unsigned levels = log2 % LEVELS, steps = levels + log2 / LEVELS;
+    uint16_t *here = steps % 2 ? spare : place, *there = steps % 2 ? place : spare;
     here[0] = 0;
-    for (unsigned k = 0; k < log2; k++) {
-        split((size_t)1 << k, bits, here, there);
+    for (unsigned k = 0; k < log2; k += k < levels ? 1 : LEVELS) {
+        if (k < levels)
+            split_two((size_t)1 << k, bits, here, there);
+        else
+            split_eight((size_t)1 << k, bits, here, there);
         uint16_t *last = here;
         here = there;
         there = last;
     }
 }
 
-static void arrange(size_t n, const uint16_t *restrict cell, const uint16_t *restrict place,
-                    const double *restrict ordered, double location, double scale,
-                    double *restrict x)
+static void shift(size_t n, double location, double scale, double *x)
 {
     for (size_t i = 0; i < n; i++)
-        x[i] = location + scale * ordered[place[cell[i]]];
+        x[i] = location + scale * x[i];
 }
 
 const struct draw_kernels ISA_NAME(draw_kernels) = {jitter, cells, cells_at, chances,
-                                                    steps,  net,   nest,     arrange};
+                                                    steps,  net,   nest,     shift};

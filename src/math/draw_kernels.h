@@ -16,7 +16,7 @@ struct draw_kernels {
     /* x[i] by the polynomial of cell i, for first <= i < end: strata are cells */
     void (*cells)(size_t first, size_t end, const struct quantile_cells *c, const uint32_t *jitter,
                   double *x);
-    /* The same for any strata; where a cell has no polynomial x[i] is any number. */
+    /* The same for any strata, by the rows; where a cell has no polynomial x[i] is any number. */
     void (*cells_at)(size_t n, unsigned log2, const struct quantile_cells *c,
                      const uint16_t *stratum, const uint32_t *jitter, double *x);
     /* u and 1 - u, exactly */
@@ -29,9 +29,8 @@ struct draw_kernels {
     /* The nested permutation of 2^log2 numbers: bit s + j of `bits`, 1 <= s = 2^k <= s + j < 2 s,
      * tells whether the halves of part j of s change places. `spare` has the size of `place`. */
     void (*nest)(unsigned log2, const uint64_t *bits, uint16_t *spare, uint16_t *place);
-    /* x[i] = location + scale ordered[place[cell[i]]] */
-    void (*arrange)(size_t n, const uint16_t *cell, const uint16_t *place, const double *ordered,
-                    double location, double scale, double *x);
+    /* x[i] becomes location + scale x[i] */
+    void (*shift)(size_t n, double location, double scale, double *x);
 };
 
 extern const struct draw_kernels draw_kernels_plain, draw_kernels_wide, draw_kernels_widest;

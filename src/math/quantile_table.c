@@ -428,6 +428,19 @@ void quantile_table_new(struct arena *a, const struct quantile_edges *edges, con
         out->way = QUANTILE_EXACT;
 }
 
+void quantile_table_rows(struct arena *a, struct quantile_table *t)
+{
+    typedef double row[QUANTILE_ROW];
+    if (t->way != QUANTILE_TABLE)
+        return;
+    char *at = arena_array(a, QUANTILE_CELLS + 1, sizeof(row));
+    row *rows = (row *)(void *)(at + (-(uintptr_t)at & (sizeof(row) - 1)));
+    for (size_t k = 0; k < QUANTILE_CELLS; k++)
+        for (int j = 0; j < QUANTILE_TERMS; j++)
+            rows[k][j] = t->cells.term[j][k];
+    t->cells.rows = (const row *)rows;
+}
+
 double quantile_at_deviate(const struct quantile_table *t, double z)
 {
     double value = steps_at(&t->steps, z).value;

@@ -37,6 +37,7 @@ struct quantile_standard quantile_standard(const struct dist *d);
 
 enum {
     QUANTILE_TERMS = 6, /* of a polynomial: powers 0 to 5 */
+    QUANTILE_ROW = 8,   /* room for them in a line of the cache */
     QUANTILE_LOG2_CELLS = 10,
     QUANTILE_CELLS = 1 << QUANTILE_LOG2_CELLS
 };
@@ -56,6 +57,9 @@ struct quantile_steps {
 /* Cell k holds u = (k + t) / 1024, 0 < t < 1; term[j][k] as above, for low <= k < 1024 - high. */
 struct quantile_cells {
     double *term[QUANTILE_TERMS];
+    /* The same again, term j of cell k in rows[k][j]: one line of the cache each, for those who take
+     * single cells. NULL unless quantile_table_rows has been called. */
+    const double (*rows)[QUANTILE_ROW];
     size_t low, high;
 };
 
@@ -76,6 +80,9 @@ void quantile_edges(struct quantile_edges *edges);
 /* Of a standardised distribution. Lives in `a`. */
 void quantile_table_new(struct arena *a, const struct quantile_edges *edges, const struct dist *d,
                         struct quantile_table *out);
+
+/* Makes the rows of the cells, in `a`, if the table has cells. */
+void quantile_table_rows(struct arena *a, struct quantile_table *t);
 
 /* The quantile at z by the first form; and at u = 1 - v, the smaller of the two exact, by whatever
  * way the table has, the second form where the cell has a polynomial. One at a time, for tests and

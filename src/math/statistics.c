@@ -1,10 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Estimates from samples (statistics.h). Owns nothing beyond its scratch. */
+/* Estimates from samples (statistics.h); quantiles are in quantiles.c. Owns nothing beyond its scratch. */
 #include "math/statistics.h"
 
 #include <math.h>
 #include <stdlib.h>
-#include <string.h>
 
 #include "math/dist.h"
 
@@ -45,52 +44,6 @@ struct sampled statistics_mean(size_t sets, size_t points, const double *x)
         squares += away * away;
     }
     return (struct sampled){all, error_of(sets, squares)};
-}
-
-/* ---- quantiles ---- */
-
-static int by_value(const void *p, const void *q)
-{
-    double a = *(const double *)p, b = *(const double *)q;
-    return (a > b) - (a < b);
-}
-
-static double *sorted(double *to, size_t n, const double *x)
-{
-    memcpy(to, x, n * sizeof *x);
-    qsort(to, n, sizeof *to, by_value);
-    return to;
-}
-
-static double quantile_of(size_t n, const double *rising, double p)
-{
-    double at = p * (double)n - 0.5;
-    if (at <= 0)
-        return rising[0];
-    if (at >= (double)(n - 1))
-        return rising[n - 1];
-    size_t k = (size_t)at;
-    return rising[k] + (at - (double)k) * (rising[k + 1] - rising[k]);
-}
-
-void statistics_quantiles(struct arena *a, size_t sets, size_t points, const double *x, size_t n,
-                          const double *p, struct sampled *out)
-{
-    struct arena *scratch = arena_child(a);
-    double *at = NEW_ARRAY(scratch, sets * points, double);
-    sorted(at, sets * points, x);
-    for (size_t k = 0; k < n; k++)
-        out[k] = (struct sampled){quantile_of(sets * points, at, p[k]), 0};
-    for (size_t s = 0; s < sets; s++) {
-        sorted(at, points, x + s * points);
-        for (size_t k = 0; k < n; k++) {
-            double away = quantile_of(points, at, p[k]) - out[k].value;
-            out[k].error += away * away;
-        }
-    }
-    for (size_t k = 0; k < n; k++)
-        out[k].error = error_of(sets, out[k].error);
-    arena_free(scratch);
 }
 
 /* ---- rank correlation ---- */

@@ -13,12 +13,10 @@
 #include <stdlib.h>
 #include <string.h>
 
-#include "doc/json.h"
-#include "figure/figure.h"
 #include "graph/average_parts.h"
 #include "median.h"
 #include "random.h"
-#include "store/store.h"
+#include "register_figures.h"
 
 enum { LEAST_WINDOWS = 20, MOST_DIAGRAMS = 200, CALLS = 16 };
 static const double SPREAD = 3;
@@ -44,12 +42,6 @@ static _Noreturn void fail(const char *why)
 {
     fprintf(stderr, "averages: %s\n", why);
     exit(EXIT_FAILURE);
-}
-
-static void must(ohmen_status status, const ohmen_error *e)
-{
-    if (status != OHMEN_OK)
-        fail(e->text);
 }
 
 /* ---- what is averaged ---- */
@@ -121,47 +113,10 @@ static void make_one(struct bench *b, struct random *r, node_id node)
     one->points /= CALLS;
 }
 
-static const struct model *read_model(struct bench *b, const char *path)
-{
-    ohmen_error e = OHMEN_ERROR_INIT;
-    struct store *s;
-    uint64_t head;
-    struct store_objects objects = {0};
-    struct diags d;
-    must(store_open(b->arena, path, STORE_READ, &s, &e), &e);
-    must(store_head(s, &head, &e), &e);
-    must(store_state(s, head, &objects, &e), &e);
-    struct model_source *sources = NEW_ARRAY(b->arena, objects.n, struct model_source);
-    for (size_t i = 0; i < objects.n; i++) {
-        const struct store_object *o = &objects.at[i];
-        struct node *node;
-        must(json_read(b->arena, o->json, o->n, o->id, &node, &e), &e);
-        sources[i] = (struct model_source){o->kind, o->id, node};
-    }
-    diags_init(&d, b->arena);
-    const struct model *m = model_load(b->arena, sources, objects.n, &d);
-    if (!m)
-        fail("the register cannot be loaded");
-    return m;
-}
-
-static void make_figures(struct bench *b, const char *path)
-{
-    ohmen_error e = OHMEN_ERROR_INIT;
-    const struct variant *base;
-    const struct compiled *c;
-    const struct model *m = read_model(b, path);
-    must(figures_new(b->arena, m, "all", date_of(2026, 12, 1), &b->figures, &e), &e);
-    must(figures_variant(b->figures, 0, NULL, &base, &e), &e);
-    for (size_t i = 0; i < m->of[KIND_HAZARD].n; i++)
-        must(figures_compile(b->figures, base, m->of[KIND_HAZARD].at[i]->id, &c, &e), &e);
-    must(figures_evaluate(b->figures, &e), &e);
-}
-
 static void make_all(struct bench *b, const char *path)
 {
     struct random r = random_seed(2385);
-    make_figures(b, path);
+    b->figures = bench_figures(b->arena, path);
     const struct graph *g = b->figures->graph;
     for (node_id n = 0; n < graph_size(g) && b->n < MOST_DIAGRAMS; n++)
         if (graph_at(g, n)->op == OP_DIAGRAM && graph_windows_of(g, n).n >= LEAST_WINDOWS &&

@@ -13,5 +13,11 @@ double bench_worked(void);
 
 /* The median of RUNS times; sorts them. */
 double bench_median(double times[RUNS]);
+double bench_least(const double times[RUNS]);
+
+/* Tells how much faster two threads were than one, by the medians and by the best of RUNS times of
+ * the clock; beside it the same of a loop that only counts, measured now, which is what the machine
+ * has to give at all; and how many threads wanted to run in the last minute. */
+void bench_tell_threads(double one[RUNS], double two[RUNS]);
 
 #endif

@@ -8,7 +8,7 @@
  * second and the speed as a part of the hand-written loop's: the aims are 40 % for pairs and 70 %
  * with whole programs as one instruction. Last the numbers for tests/bench/numpy_model.py. */
 #include "median.h"
-#include "tape_model.h"
+#include "tape_graph.h"
 
 #include "eval/tape_parts.h"
 #include "random.h"
@@ -29,42 +29,9 @@ struct world {
     double *x[MODEL_INPUTS];
 };
 
-static const struct dim number;
+static const double means[MODEL_INPUTS] = {0.5, 0.5, 0.5, 0.5, 0.5, 0.5, 0.5};
 static const uint32_t inputs[MODEL_INPUTS] = {0, 1, 2, 3, 4, 5, 6};
 static const struct tape_inputs all = {MODEL_INPUTS, inputs, 0, NULL};
-
-static node_id times(struct world *w, node_id a, node_id b)
-{
-    return graph_op2(w->g, OP_MULTIPLY, a, b);
-}
-
-static node_id blend(struct world *w, node_id p, node_id q, node_id a, node_id b)
-{
-    return graph_op2(w->g, OP_ADD, times(w, p, a), times(w, q, b));
-}
-
-static node_id build(struct world *w, const double *constants)
-{
-    node_id x[MODEL_INPUTS], c[MODEL_CONSTANTS], p[4], q[3], one = graph_const(w->g, 1, number);
-    for (uint32_t i = 0; i < MODEL_INPUTS; i++)
-        x[i] = graph_input(w->g, i, 0.5, number);
-    for (int i = 0; i < MODEL_CONSTANTS; i++)
-        c[i] = graph_const(w->g, constants[i], number);
-    node_id rate = times(w, x[0], c[0]), exposed = times(w, rate, c[1]);
-    for (int i = 0; i < 4; i++)
-        p[i] = graph_op2(w->g, OP_MIN, times(w, x[1 + i], c[2 + i]), one);
-    for (int i = 0; i < 3; i++)
-        q[i] = graph_op1(w->g, OP_COMPLEMENT, p[i]);
-    node_id a = blend(w, p[1], q[1], c[6], c[7]), b = blend(w, p[2], q[2], c[8], c[9]);
-    node_id harm = blend(w, p[0], q[0], a, b);
-    node_id people = times(w, x[5], c[10]), money = times(w, x[6], c[11]);
-    node_id e1 = times(w, exposed, p[0]), e2 = times(w, exposed, q[0]);
-    node_id terms[] = {
-        times(w, times(w, e1, p[3]), people),     times(w, times(w, e1, money), a),
-        times(w, times(w, e2, people), b),        times(w, times(w, e2, money), c[12]),
-        times(w, times(w, exposed, harm), c[13]), times(w, times(w, rate, money), c[12])};
-    return times(w, graph_op(w->g, OP_SUM, sizeof terms / sizeof *terms, terms), c[14]);
-}
 
 /* A row that begins with a line of the cache, as it would for a caller who cares. */
 static double *aligned(struct world *w, size_t n)
@@ -84,7 +51,7 @@ static void make_world(struct world *w, size_t hazards, size_t n)
         for (int i = 0; i < MODEL_CONSTANTS; i++)
             w->c[h][i] = random_uniform(&r, 0.1, 1.5);
         graph_section_begin(w->g, (uint32_t)h);
-        w->roots[h] = build(w, w->c[h]);
+        w->roots[h] = tape_graph(w->g, 0, means, w->c[h]);
         graph_section_end(w->g);
     }
     w->v = eval_new(w->arena, w->g);

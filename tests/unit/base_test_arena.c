@@ -41,6 +41,30 @@ START_TEST(memory_is_zero_aligned_and_apart)
 }
 END_TEST
 
+/* Around the size of a large page (2^21), beside small ones, from the C library itself. */
+START_TEST(large_blocks_are_zero_and_apart)
+{
+    enum { BLOCKS = 24 };
+    for (int round = 0; round < 2; round++) { /* what was freed comes again */
+        struct arena *a = arena_new(NULL);
+        struct random r = random_seed(7);
+        unsigned char *blocks[BLOCKS];
+        size_t sizes[BLOCKS];
+        for (int i = 0; i < BLOCKS; i++) {
+            size_t about = (size_t)random_range(&r, 1, 3) << 21;
+            sizes[i] = i % 2 ? about + (size_t)random_range(&r, -70, 70) : 100;
+            blocks[i] = arena_alloc(a, sizes[i]);
+            ck_assert_uint_eq((uintptr_t)blocks[i] % 16, 0);
+            ck_assert(all_are(blocks[i], sizes[i], 0));
+            memset(blocks[i], i + 1, sizes[i]);
+        }
+        for (int i = 0; i < BLOCKS; i++)
+            ck_assert(all_are(blocks[i], sizes[i], (unsigned char)(i + 1)));
+        arena_free(a);
+    }
+}
+END_TEST
+
 START_TEST(sizes_at_the_edges)
 {
     struct arena *a = arena_new(NULL);
@@ -67,7 +91,11 @@ static void ask_too_much(struct arena *a, int way)
     case 3: arena_array(a, 3, SIZE_MAX / 2); break;
     case 4: arena_exhausted(a);
     case 5: {
-        struct { struct arena *arena; char *at; size_t n, cap; } xs = {0};
+        struct {
+            struct arena *arena;
+            char *at;
+            size_t n, cap;
+        } xs = {0};
         xs.n = xs.cap = SIZE_MAX - 1;
         array_reserve(a, &xs, 2);
         break;
@@ -392,6 +420,7 @@ Suite *suite_arena(void)
     Suite *s = suite_create("arena, array, map");
     TCase *t = tcase_create("memory");
     tcase_add_test(t, memory_is_zero_aligned_and_apart);
+    tcase_add_test(t, large_blocks_are_zero_and_apart);
     tcase_add_test(t, sizes_at_the_edges);
     tcase_add_loop_test(t, too_much_jumps_to_the_guard, 0, 7);
     tcase_add_test(t, own_guard_goes_before_the_parents);

@@ -5,9 +5,12 @@
 #include <check.h>
 #include <math.h>
 #include <stdlib.h>
+#include <string.h>
 
+#include "math/columns.h"
 #include "math/dist.h"
 #include "math/stream.h"
+#include "random.h"
 
 static struct arena *arena;
 
@@ -62,6 +65,92 @@ START_TEST(quantile_intervals_hold)
 }
 END_TEST
 
+static int by_value(const void *p, const void *q)
+{
+    double a = *(const double *)p, b = *(const double *)q;
+    return (a > b) - (a < b);
+}
+
+/* By the C library's sorting: what stands at p among n values. */
+static double sorted_quantile(size_t n, const double *x, double p)
+{
+    static double rising[4096];
+    double at = fmin(fmax(p * (double)n - 0.5, 0), (double)(n - 1));
+    size_t k = (size_t)at;
+    memcpy(rising, x, n * sizeof *x);
+    qsort(rising, n, sizeof *rising, by_value);
+    return at > (double)k ? rising[k] + (at - (double)k) * (rising[k + 1] - rising[k]) : rising[k];
+}
+
+/* Quantiles and their errors, to the bit, of samples of any size, with many equal values and few,
+ * beside plain sorting of all and of each set. */
+START_TEST(quantiles_of_any_sample)
+{
+    static const double p[] = {1e-9, 0.05, 0.25, 0.5, 0.731, 0.95, 1 - 1e-9};
+    enum { N = sizeof p / sizeof *p };
+    struct random r = random_seed(24);
+    for (int trial = 0; trial < 3000; trial++) {
+        size_t sets = (size_t)random_range(&r, 2, 35), points = (size_t)random_range(&r, 1, 100);
+        double *x = NEW_ARRAY(arena, sets * points, double);
+        int64_t most = trial % 3 ? INT32_MAX : random_range(&r, 0, 20);
+        for (size_t i = 0; i < sets * points; i++)
+            x[i] = (double)random_range(&r, -most, most) + 0.0;
+        struct sampled q[N];
+        statistics_quantiles(arena, sets, points, x, N, p, q);
+        for (int k = 0; k < N; k++) {
+            double want = sorted_quantile(sets * points, x, p[k]), squares = 0;
+            for (size_t s = 0; s < sets; s++) {
+                double away = sorted_quantile(points, x + s * points, p[k]) - want;
+                squares += away * away;
+            }
+            double error = sqrt(squares / (double)sets / (double)(sets - 1));
+            ck_assert_msg(q[k].value == want && q[k].error == error,
+                          "%zu sets of %zu at %g: %.17g (%.17g), not %.17g (%.17g)", sets, points,
+                          p[k], q[k].value, q[k].error, want, error);
+        }
+    }
+}
+END_TEST
+
+enum { MOST_ROWS = 300 };
+
+static void check_columns(enum isa isa, size_t n, double (*rows)[COLUMNS_TOGETHER])
+{
+    static const struct columns_kernels *const kernels[ISA_COUNT] = {
+#define X(name, needs) &columns_kernels_##name,
+        ISAS(X)
+#undef X
+    };
+    double sorted[MOST_ROWS][COLUMNS_TOGETHER], want[MOST_ROWS];
+    memcpy(sorted, rows, n * sizeof *rows);
+    kernels[isa]->sort(n, sorted);
+    for (int k = 0; k < COLUMNS_TOGETHER; k++) {
+        for (size_t i = 0; i < n; i++)
+            want[i] = rows[i][k];
+        qsort(want, n, sizeof *want, by_value);
+        for (size_t i = 0; i < n; i++)
+            ck_assert(sorted[i][k] == want[i]);
+    }
+}
+
+/* Columns of any length, each with its own numbers, by all instruction sets. */
+START_TEST(columns_are_sorted)
+{
+    static double rows[MOST_ROWS][COLUMNS_TOGETHER];
+    struct random r = random_seed(5);
+    for (int trial = 0; trial < 300; trial++) {
+        size_t n = (size_t)random_range(&r, 0, MOST_ROWS);
+        int64_t most = random_range(&r, 0, 500);
+        for (size_t i = 0; i < n; i++)
+            for (int k = 0; k < COLUMNS_TOGETHER; k++)
+                rows[i][k] = (double)random_range(&r, -most, most);
+        for (int isa = 0; isa < ISA_COUNT; isa++)
+            if (isa_runs((enum isa)isa))
+                check_columns((enum isa)isa, n, rows);
+    }
+}
+END_TEST
+
 /* Ranks 1..5 against 1 2 3 5 4: 1 - 6 (1 + 1) / (5 x 24) = 0.9. With ties: x = 1 1 2, y = 1 2 3 has
  * ranks 1.5 1.5 3: the product-moment correlation of these, sqrt(3)/2. */
 START_TEST(ranks_by_hand)
@@ -98,6 +187,8 @@ int main(void)
     tcase_add_test(t, mean_by_hand);
     tcase_add_test(t, quantiles_by_hand);
     tcase_add_test(t, quantile_intervals_hold);
+    tcase_add_test(t, quantiles_of_any_sample);
+    tcase_add_test(t, columns_are_sorted);
     tcase_add_test(t, ranks_by_hand);
     tcase_add_test(t, student);
     suite_add_tcase(s, t);
