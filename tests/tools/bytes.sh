@@ -35,20 +35,20 @@ checks=0 failed=0
 
 # What is compared, one command line a line. Text is forced to ASCII or has a twin below:
 # the locale's name decides between UTF-8 and ASCII where nothing else does.
-commands='report --ascii --width 100
+commands='report --ascii --width 100 --samples 256
 memo D-VH-DARK --json
 memo D-VH-DARK --html
-memo D-GU --csv
+memo D-GU --csv --samples 256
 hazards --ascii
 hazards --csv --site VH --perspective company
 supply --json
 people --csv
 protection --csv --site GU
 grid D-GU --json
-weigh D-TQ --csv
+weigh D-TQ --csv --samples 256
 sensitivity D-VH-DARK --json
 sensitivity D-VH-DARK --ascii --width 80
-weigh D-GU --html
+weigh D-GU --html --samples 256
 show H-TQ-BUS --json
 show VH-INC1 --ascii
 list options --where site=VH --sort invest --csv
@@ -64,7 +64,7 @@ export --observations
 schema
 help --markdown'
 unicode='hazards --width 120
-weigh D-GU
+weigh D-GU --samples 256
 explain H-GU-CABLE.risk'
 
 # What is sampled, which threads and kernels have to give the same of. Options are put behind.
