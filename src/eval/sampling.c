@@ -14,6 +14,7 @@
 
 #include <assert.h>
 #include <math.h>
+#include <stdlib.h>
 #include <string.h>
 
 struct sampler {
@@ -116,13 +117,20 @@ struct worker {
     double **out;
 };
 
+/* Inputs take turns by tables, so that a table is in the cache for all who need it. */
+struct turn {
+    uintptr_t table;
+    uint32_t input;
+};
+
 struct run {
     const struct sampler *s;
     struct arena *arena;
     size_t points, block, sets_of_step, n_roots;
     size_t n;
-    uint32_t *inputs; /* of these roots, which rise */
-    uint32_t *drawn;  /* where each is among those of the sampler */
+    uint32_t *inputs;   /* of these roots, which rise */
+    uint32_t *drawn;    /* where each is among those of the sampler */
+    struct turn *turns; /* in which order they are drawn */
     size_t n_inner;
     struct inner **inner;
     uint32_t **inner_at; /* of each: where its unknown inputs are among `inputs` */
@@ -151,6 +159,29 @@ static ohmen_status make_inner(struct run *r, const struct inner_nodes *nodes, o
             r->inner_at[k][i] = knot_place(r->inputs, r->n, x->unknown[i]);
     }
     return OHMEN_OK;
+}
+
+static int order_of_turns(const void *p, const void *q)
+{
+    const struct turn *a = p, *b = q;
+    if (a->table != b->table)
+        return a->table < b->table ? -1 : 1;
+    return (a->input > b->input) - (a->input < b->input);
+}
+
+/* Finds the inputs of the roots among those of the sampler. */
+static void find_drawn(struct run *r)
+{
+    const struct sampler *s = r->s;
+    r->drawn = NEW_ARRAY(r->arena, r->n, uint32_t);
+    r->turns = NEW_ARRAY(r->arena, r->n, struct turn);
+    for (uint32_t i = 0; i < r->n; i++) {
+        r->drawn[i] = knot_place(s->inputs, s->n, r->inputs[i]);
+        assert(r->drawn[i] != UINT32_MAX);
+        r->turns[i] = (struct turn){draws_table(s->draws, r->drawn[i]), i};
+    }
+    if (r->n > 1)
+        qsort(r->turns, r->n, sizeof *r->turns, order_of_turns);
 }
 
 static void make_worker(struct run *r, struct worker *w)
@@ -189,11 +220,7 @@ static ohmen_status prepare(struct run *r, const node_id *roots, ohmen_error *e)
     const struct sampler *s = r->s;
     struct inner_nodes nodes = {0};
     r->inputs = unknown_inputs(r->arena, s->v->g, s->source, r->n_roots, roots, &r->n);
-    r->drawn = NEW_ARRAY(r->arena, r->n, uint32_t);
-    for (size_t i = 0; i < r->n; i++) {
-        r->drawn[i] = knot_place(s->inputs, s->n, r->inputs[i]);
-        assert(r->drawn[i] != UINT32_MAX);
-    }
+    find_drawn(r);
     inner_find(r->arena, s->v->g, s->source, r->n_roots, roots, &nodes);
     ohmen_status status = make_inner(r, &nodes, e);
     if (status != OHMEN_OK)
@@ -211,9 +238,11 @@ static ohmen_status prepare(struct run *r, const node_id *roots, ohmen_error *e)
 
 static void draw(const struct run *r, struct worker *w, size_t set, size_t sets)
 {
-    for (size_t i = 0; i < r->n; i++)
+    for (size_t turn = 0; turn < r->n; turn++) {
+        uint32_t i = r->turns[turn].input;
         for (size_t k = 0; k < sets; k++)
             draws_fill(r->s->draws, r->drawn[i], set + k, w->draw, w->rows[i] + k * r->points);
+    }
 }
 
 /* Lanes at .. at + n of a step. */

@@ -375,3 +375,8 @@ void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, dou
     d->kernels->shift(n, in->location, in->scale, r.ordered);
     arrange(n, cell, place, r.ordered, x);
 }
+
+uintptr_t draws_table(const struct draws *d, size_t i)
+{
+    return (uintptr_t)d->inputs[i].table;
+}

@@ -29,6 +29,8 @@
 #ifndef MATH_DRAW_H
 #define MATH_DRAW_H
 
+#include <stdint.h>
+
 #include "base/arena.h"
 #include "base/error.h"
 #include "base/isa.h"
@@ -69,5 +71,9 @@ size_t draws_work(const struct draws *d);
 /* The values of input i in a set: x[0 .. 2^log2_points). Allocates nothing; several threads may
  * fill at once, each with a work space of its own. */
 void draws_fill(const struct draws *d, size_t i, uint64_t set, double *work, double *x);
+
+/* What stands for the table of input i: those of inputs with equal ones are the same, and in the
+ * cache when they are filled one after the other. */
+uintptr_t draws_table(const struct draws *d, size_t i);
 
 #endif

@@ -192,6 +192,7 @@ int main(int argc, char **argv)
     printf("  resident: the graph and its evaluation %.0f MB, with all samples %.0f MB\n", graph,
            sampled);
     tell(&b, "making the sampler, once", making);
+    fflush(stdout); /* with very many hazards the rest takes long */
     make_draws(&b);
     measure(&b);
     arena_free(b.h->arena);
