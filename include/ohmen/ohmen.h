@@ -41,6 +41,11 @@
 /* "0.1.0" */
 const char *ohmen_version(void);
 
+/* For a program that is there for ohmen, before anything else: memory that is freed stays with the
+ * process for what is asked for next, which saves time. Changes settings of the C library for the
+ * whole process (of glibc; elsewhere it does nothing), so that the library never does it itself. */
+void ohmen_keep_memory(void);
+
 /* --- registers --- */
 
 typedef struct ohmen_register ohmen_register;
@@ -62,8 +67,8 @@ typedef void ohmen_progress(void *ctx, const char *phase, size_t done, size_t to
 void ohmen_watch(ohmen_register *r, ohmen_progress *progress, void *ctx);
 
 /* Asked between batches of samples (phase "sampling"): true ends the sampling there, at least one
- * batch being taken. The call then returns OHMEN_INTERRUPTED, and a report as well (*out is set) that
- * says how many batches there were, and which depends on nothing else of when it was interrupted.
+ * batch being taken. The call then returns OHMEN_INTERRUPTED, and a report as well (*out is set)
+ * that says how many batches there were, and depends on nothing else of when it was interrupted.
  * Must not call the library. */
 typedef bool ohmen_stop(void *ctx);
 void ohmen_stop_when(ohmen_register *r, ohmen_stop *stop, void *ctx);
@@ -121,7 +126,7 @@ typedef struct ohmen_query {
     /* Of samples over all that is unknown: ohmen_weigh, _memo, _sensitivity, _report_all, and
      * ohmen_explain where the figure comes from a sample. */
     unsigned samples;      /* values of each figure, in 16 independent sets at least: a power of 2
-                              from 256 to 1048576, others are rounded up; 0: 1024 */
+                              from 256 to 1048576, others are rounded up; 0: 512 */
     const char *precision; /* "0.5 %": stop as soon as the standard errors of the means of the
                               worths are at most that part of the greatest of them; `samples` is
                               the most then (0: 65536). NULL: all samples. OHMEN_USAGE for what is

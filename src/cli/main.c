@@ -5,7 +5,6 @@
  * the command line also by where help stands. */
 #include <stdio.h>
 
-#include "base/arena.h"
 #include "cli/commands.h"
 #include "cli/help.h"
 #include "cli/layout.h"
@@ -63,7 +62,7 @@ int main(int argc, char **argv)
 {
     ohmen_error error = OHMEN_ERROR_INIT;
     struct args args;
-    mem_system_keep();
+    ohmen_keep_memory();
     output_guard_streams();
     args_parse(argc, argv, &args, &error);
     struct progress progress;

@@ -70,7 +70,7 @@ const struct option options[OPTION_COUNT] = {
                       .help = "go down N levels; all levels if left out"},
     [OPTION_SAMPLES] = {"samples", 0, VALUE_NUMBER, "N", 256, 1048576,
                         .help = "values of each figure that are drawn over all that is unknown, "
-                                "rounded up to a power of 2; 1024 if left out (with --precision: "
+                                "rounded up to a power of 2; 512 if left out (with --precision: "
                                 "65536 at the most)"},
     [OPTION_PRECISION] = {"precision", 0, VALUE_TEXT, "PART",
                           .help = "draw samples until the standard errors of the mean worths are "

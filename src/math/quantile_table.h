@@ -57,8 +57,8 @@ struct quantile_steps {
 /* Cell k holds u = (k + t) / 1024, 0 < t < 1; term[j][k] as above, for low <= k < 1024 - high. */
 struct quantile_cells {
     double *term[QUANTILE_TERMS];
-    /* The same again, term j of cell k in rows[k][j]: one line of the cache each, for those who take
-     * single cells. NULL unless quantile_table_rows has been called. */
+    /* The same again, term j of cell k in rows[k][j]: one line of the cache each, for those who
+     * take single cells. NULL unless quantile_table_rows has been called. */
     const double (*rows)[QUANTILE_ROW];
     size_t low, high;
 };

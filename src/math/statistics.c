@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Estimates from samples (statistics.h); quantiles are in quantiles.c. Owns nothing beyond its scratch. */
+/* Estimates from samples (statistics.h); quantiles are in quantiles.c. Owns nothing beyond its
+ * scratch. */
 #include "math/statistics.h"
 
 #include <math.h>

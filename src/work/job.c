@@ -16,6 +16,11 @@ const char *ohmen_version(void)
     return OHMEN_VERSION;
 }
 
+void ohmen_keep_memory(void)
+{
+    mem_system_keep();
+}
+
 ohmen_status ohmen_create(const char *path, ohmen_error *e)
 {
     return store_create(path, e);

@@ -9,7 +9,7 @@
 #include "work/work.h"
 
 enum {
-    USUAL_SAMPLES = 1024,
+    USUAL_SAMPLES = 512,
     LEAST_SAMPLES = 256,
     MOST_SAMPLES = 1 << 20,
     MOST_FOR_PRECISION = 65536,

@@ -409,7 +409,7 @@ static double slope(const struct recipe *r, size_t place, size_t input)
            (12 * h);
 }
 
-/* By the nodes below a root alone derivatives are the same, to the bit, and others are left alone. */
+/* By the nodes below a root alone derivatives are the same, to the bit, and others are left. */
 static void check_those_below(const struct built *b, node_id root, const double *want)
 {
     size_t size = graph_size(b->g), n = 0;
