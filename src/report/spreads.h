@@ -13,6 +13,7 @@
 #define SPREADS_MEDIAN_WORDS "median"
 #define SPREADS_MEAN_WORDS "mean"
 #define SPREADS_ERROR_WORDS "Error: the standard error of a number that was sampled."
+#define SPREADS_NO_ERROR_WORDS "Left out for want of width: the standard errors of these numbers."
 
 /* What a narrow page gives up first. */
 enum { SPREADS_ERROR_KEEP = 1, SPREADS_MEAN_ERROR_KEEP, SPREADS_DRAWN_KEEP };
@@ -21,6 +22,7 @@ struct spreads_plane {
     const struct page *page;
     const struct spreads *spreads;
     bool common, log;
+    bool with_errors; /* all of them, or none */
     double low, high; /* of the common scale; log: powers of ten */
     double decades;   /* that each log scale of its own has */
     int shift;        /* where common */

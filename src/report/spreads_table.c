@@ -95,7 +95,8 @@ static void open_own(struct spreads_plane *g)
 
 void spreads_open(struct spreads_plane *g, const struct page *p, const struct spreads *s)
 {
-    *g = (struct spreads_plane){.page = p, .spreads = s, .common = are_alike(s)};
+    *g = (struct spreads_plane){
+        .page = p, .spreads = s, .common = are_alike(s), .with_errors = true};
     if (s->n && g->common)
         open_common(g);
     else if (s->n)
@@ -204,7 +205,7 @@ static void add_columns(const struct spreads_plane *g, struct report *r, struct 
     block_column(r, b, "label", "Number", "", STYLE_PLAIN);
     for (int k = 0; k < SPREAD_PARTS; k++) {
         add_column(r, b, part_heads[k], unit, 0);
-        if (has_error(s, k))
+        if (g->with_errors && has_error(s, k))
             add_column(r, b, error_heads[k], unit,
                        k == SPREAD_MEAN ? SPREADS_MEAN_ERROR_KEEP : SPREADS_ERROR_KEEP);
     }
@@ -232,9 +233,9 @@ static void add_row(const struct spreads_plane *g, struct report *r, struct bloc
     for (int k = 0; k < SPREAD_PARTS; k++) {
         const struct spread_value *v = &s->parts[k];
         add_number(r, row, s, v->value, shift, v->figure);
-        if (v->error >= 0)
+        if (g->with_errors && v->error >= 0)
             add_number(r, row, s, v->error, shift, NULL);
-        else if (has_error(g->spreads, k))
+        else if (g->with_errors && has_error(g->spreads, k))
             row_empty(r, row);
     }
     if (!g->common)

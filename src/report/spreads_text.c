@@ -8,6 +8,8 @@
 
 #include "report/table_shape.h"
 
+enum { LEAST_DRAWN = 16 }; /* columns of a strip */
+
 enum { TRACK, RANGE, LOW_END, HIGH_END, NO_RANGE, MEDIAN, MEAN, BOTH, SORTS };
 
 static const char *glyph_of(const struct page *p, int sort)
@@ -58,13 +60,13 @@ static struct block *drawn_table(const struct spreads_plane *g, int columns)
 /* Strips wide enough for the page, or none: then the last column goes. */
 static const struct block *widest_table(const struct spreads_plane *g, bool *drawn)
 {
-    static const int widths[] = {60, 48, 36, 30, 24, 20, 16};
+    static const int widths[] = {60, 48, 36, 30, 24, 20, LEAST_DRAWN};
+    unsigned keep = g->with_errors ? SPREADS_ERROR_KEEP : SPREADS_DRAWN_KEEP;
     *drawn = true;
     for (int easy = 1; easy >= 0; easy--) {
         for (size_t i = 0; i < sizeof widths / sizeof *widths; i++) {
             struct block *b = drawn_table(g, widths[i]);
-            if (widths[i] * 3 <= (int)g->page->width &&
-                table_has_room(g->page, b, SPREADS_DRAWN_KEEP, easy))
+            if (widths[i] * 3 <= (int)g->page->width && table_has_room(g->page, b, keep, easy))
                 return b;
         }
     }
@@ -72,6 +74,12 @@ static const struct block *widest_table(const struct spreads_plane *g, bool *dra
     struct block *b = spreads_table(g);
     b->columns.n--;
     return b;
+}
+
+/* Is there room for all errors, beside the narrowest picture or without one? */
+static bool have_errors_room(struct spreads_plane *g)
+{
+    return table_has_room(g->page, drawn_table(g, LEAST_DRAWN), SPREADS_ERROR_KEEP, false);
 }
 
 static void write_key(struct page *p)
@@ -89,12 +97,14 @@ void page_spreads(struct page *p, const struct spreads *s)
     struct spreads_plane g;
     bool drawn;
     spreads_open(&g, p, s);
+    g.with_errors = have_errors_room(&g);
     const struct block *b = widest_table(&g, &drawn);
     page_table(p, b);
     if (s->n && drawn)
         write_key(p);
     if (spreads_have_errors(s)) {
         page_blank(p);
-        page_paragraph(p, SPREADS_ERROR_WORDS, 0, INK_PLAIN);
+        page_paragraph(p, g.with_errors ? SPREADS_ERROR_WORDS : SPREADS_NO_ERROR_WORDS, 0,
+                       INK_PLAIN);
     }
 }

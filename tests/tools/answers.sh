@@ -1,7 +1,7 @@
 #!/bin/sh
 # SPDX-License-Identifier: GPL-3.0-or-later
 # Does a memo answer for itself? A reader who has nothing but the memo of a decision must find in
-# it what is asked, what is recommended, what it costs, what it avoids per year and for whom, how
+# it what is asked, what is recommended, how sure that is, what it costs, what it avoids per year and for whom, how
 # often the bad ends occur, which input would turn it and where, what is not covered, and who must
 # sign.
 #
@@ -16,7 +16,7 @@
 # whatever the lines are broken at.
 set -u
 
-questions='asked recommended costs avoids ends turns not-covered signs'
+questions='asked recommended sure costs avoids ends turns not-covered signs'
 
 if [ ! -x "${OHMEN-}" ]; then
     echo "usage: OHMEN=path/to/ohmen tests/tools/answers.sh" >&2
