@@ -1,9 +1,9 @@
 #!/bin/sh
 # SPDX-License-Identifier: GPL-3.0-or-later
 # Does a memo answer for itself? A reader who has nothing but the memo of a decision must find in
-# it what is asked, what is recommended, how sure that is, what it costs, what it avoids per year and for whom, how
-# often the bad ends occur, which input would turn it and where, what is not covered, and who must
-# sign.
+# it what is asked, what is recommended, how sure that is, what it costs, what it avoids per year
+# and for whom, how often the bad ends occur, which input would turn it and where, what is not
+# covered, and who must sign.
 #
 #   OHMEN=path/to/ohmen tests/tools/answers.sh
 #
