@@ -401,6 +401,8 @@ static void part_how_sure(struct memo *m)
     part_sure(m->j, m->w);
     part_swings(m->j, m->w);
     part_map(m->j, m->w, NULL, NULL, NULL);
+    part_sure_moves(m->j, m->w);
+    part_elasticities(m->j, m->w);
 }
 
 /* --- signatures --- */
