@@ -34,7 +34,8 @@ static const char document[] =
 static const char *const many[] = {"ohmen",   "explain",     "H.frequency[p95]", "--samples",
                                    "1048576", "--precision", "0.0000001 %",      "--width",
                                    "200",     NULL};
-static const char *const once[] = {"ohmen", "explain", "H.frequency[p95]", "--width", "200", NULL};
+static const char *const once[] = {
+    "ohmen", "explain", "H.frequency[p95]", "--width", "200", "--samples", "1024", NULL};
 
 static void put(const char *name, const char *text)
 {
@@ -163,7 +164,7 @@ START_TEST(first_interrupt_prints)
     ck_assert_uint_lt(batches, 1024);
     ck_assert_ptr_nonnull(strstr(report, " of 1024 batches"));
     ck_assert_ptr_nonnull(strstr(get("err"), "the sampling was interrupted"));
-    /* One batch is what is drawn where nothing is asked for: the same bytes, but for the words. */
+    /* One batch is what so many samples are: the same bytes, but for the words. */
     if (batches > 1)
         return;
     ck_assert_int_eq(end(begin(once)), 0);

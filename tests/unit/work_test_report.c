@@ -6,6 +6,9 @@
 #include "json_check.h"
 #include "work_test.h"
 
+/* As few as there may be: what is looked at here is not how sure it is. */
+static const ohmen_query few_samples = {.samples = 256};
+
 struct made {
     struct arena *a;
     ohmen_register *reg;
@@ -60,7 +63,7 @@ static const char *weigh(struct made *m, const char *decision)
 {
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
-    must(ohmen_weigh(m->reg, NULL, decision, &r, &e), &e);
+    must(ohmen_weigh(m->reg, &few_samples, decision, &r, &e), &e);
     return test_json(m->a, r);
 }
 
@@ -194,7 +197,7 @@ static ohmen_report *memo(struct made *m, const char *decision)
 {
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
-    must(ohmen_memo(m->reg, NULL, decision, &r, &e), &e);
+    must(ohmen_memo(m->reg, &few_samples, decision, &r, &e), &e);
     return r;
 }
 
@@ -282,7 +285,7 @@ START_TEST(the_whole_report)
     struct made m = made_new();
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
-    must(ohmen_report_all(m.reg, NULL, &r, &e), &e);
+    must(ohmen_report_all(m.reg, &few_samples, &r, &e), &e);
     const char *json = test_json(m.a, r);
     for (size_t i = 0; i < sizeof parts / sizeof *parts; i++)
         ck_assert_msg(strstr(json, arena_printf(m.a, "{\"key\": \"%s\"", parts[i])) != NULL,
@@ -299,7 +302,7 @@ START_TEST(layouts)
     struct made m = made_new();
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
-    must(ohmen_report_all(m.reg, NULL, &r, &e), &e);
+    must(ohmen_report_all(m.reg, &few_samples, &r, &e), &e);
     ohmen_layout narrow = ohmen_layout_defaults(), least = narrow, wide = narrow, most = narrow;
     narrow.width = 1;
     least.width = 60;
@@ -342,7 +345,7 @@ START_TEST(the_whole_report_fits)
     struct made m = made_new();
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
-    must(ohmen_report_all(m.reg, NULL, &r, &e), &e);
+    must(ohmen_report_all(m.reg, &few_samples, &r, &e), &e);
     for (unsigned width = 60; width <= 200; width += 20) {
         ohmen_layout layout = ohmen_layout_defaults();
         layout.width = width;
