@@ -128,8 +128,23 @@ static void compare(const struct figures *f, const struct sampling *s, size_t k,
     c->certain += certain;
 }
 
-/* All figures that were compiled, in samples of the same worlds. */
-static void compare_all(struct loaded *l, struct compared *c)
+/* By node: does it jump, as a lookup and a discrete input do? What jumps with a small probability is
+ * in the mean and in no sample, so that no error of the sets tells of it. */
+static bool *find_jumps(const struct figures *f)
+{
+    bool *jumps = NEW_ARRAY(arena, graph_size(f->graph), bool);
+    for (node_id n = 0; n < graph_size(f->graph); n++) {
+        const struct graph_node *node = graph_at(f->graph, n);
+        jumps[n] = node->op == OP_LOOKUP ||
+                   (node->op == OP_INPUT && f->inputs.at[node->extra]->shape == SHAPE_DISCRETE);
+        for (uint32_t i = 0; i < node->n; i++)
+            jumps[n] = jumps[n] || jumps[graph_args(f->graph, n)[i]];
+    }
+    return jumps;
+}
+
+/* Figures that were compiled, in samples of the same worlds. */
+static void compare_all(struct loaded *l, bool with_jumps, struct compared *c)
 {
     struct figures *f = l->figures;
     struct sampling_plan p = sampling_defaults();
@@ -138,8 +153,9 @@ static void compare_all(struct loaded *l, struct compared *c)
     figure_id *ids = NEW_ARRAY(arena, f->list.n, figure_id);
     size_t n = 0;
     loaded_evaluate(l);
+    bool *jumps = find_jumps(f);
     for (figure_id id = 0; id < f->list.n; id++)
-        if (has_samples(f, id))
+        if (has_samples(f, id) && (with_jumps || !jumps[figure_at(f, id)->node]))
             ids[n++] = id;
     p.most_batches = BATCHES;
     ck_assert_msg(figures_sample(f, arena, &p, n, ids, &s, &e) == OHMEN_OK, "%s", e.text);
@@ -174,7 +190,7 @@ START_TEST(means_of_the_sample_register)
     loaded_folder(&l, arena, arena_printf(arena, "%s/samples/skerry", root_folder), NULL);
     compile_all(&l);
     loaded_find(&l, "register.caidi");
-    compare_all(&l, &c);
+    compare_all(&l, true, &c);
     ck_assert(c.figures > 6000 && c.certain > 1000 && c.certain < c.figures / 2);
 }
 END_TEST
@@ -191,8 +207,7 @@ static void load_random(struct loaded *l, uint64_t seed)
     loaded_objects(l, arena, &all, NULL);
 }
 
-/* Seeds 10, 14 and 17 have figures of which no sample of this size can tell the mean: a damage that
- * jumps with a probability of 1.5e-7, and discrete values whose sets are all alike. */
+/* Those figures that do not jump. */
 enum { SEEDS = 10 };
 
 START_TEST(means_of_random_registers)
@@ -202,9 +217,9 @@ START_TEST(means_of_random_registers)
         struct loaded l;
         load_random(&l, seed);
         compile_all(&l);
-        compare_all(&l, &c);
+        compare_all(&l, false, &c);
     }
-    ck_assert(c.figures > 2000 && c.certain < c.figures / 2);
+    ck_assert(c.figures > 1500 && c.certain < c.figures / 2);
 }
 END_TEST
 
