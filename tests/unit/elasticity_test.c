@@ -21,21 +21,6 @@ static void teardown(void)
     arena_free(arena);
 }
 
-static double annuity(void)
-{
-    long double sum = 0;
-    for (int y = 0; y < 10; y++)
-        sum += powl(1.05L, -(y + 0.5L));
-    return (double)sum;
-}
-
-#define SETTINGS                                                                                   \
-    "register: {title: T, currency: EUR, prices: 2026, counts: [bay], horizon: 10 a, discount: 5 " \
-    "% per a}\n"
-#define LOST(damage)                                                                               \
-    "response: {never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: {loss: {category: " \
-    "c, is: " damage "}}}}"
-
 static struct elasticities find(struct loaded *l, const struct weighing *w, const char *of)
 {
     struct elasticities all;
@@ -66,7 +51,7 @@ START_TEST(by_hand)
     static const double costs[] = {900, 9000};
     for (size_t i = 0; i < 2; i++) {
         struct loaded l;
-        double a = annuity(), net = 400 * a - costs[i];
+        double a = restated_annuity(), net = 400 * a - costs[i];
         struct weighing *w = restated_weigh(
             &l, arena,
             arena_printf(arena,

@@ -23,21 +23,6 @@ static void teardown(void)
 
 #define EXACT 1e-9
 
-static double annuity(void)
-{
-    long double sum = 0;
-    for (int y = 0; y < 10; y++)
-        sum += powl(1.05L, -(y + 0.5L));
-    return (double)sum;
-}
-
-#define SETTINGS                                                                                   \
-    "register: {title: T, currency: EUR, prices: 2026, counts: [bay], horizon: 10 a, discount: 5 " \
-    "% per a}\n"
-#define LOST(damage)                                                                               \
-    "response: {never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: {loss: {category: " \
-    "c, is: " damage "}}}}"
-
 static void find(struct loaded *l, const struct restated *r, const char *x, const char *y,
                  struct weighing **w, struct choice_map *m)
 {
@@ -68,7 +53,7 @@ START_TEST(points_and_lines)
     struct loaded l;
     struct weighing *w;
     struct choice_map m;
-    double a = annuity();
+    double a = restated_annuity();
     find(&l, &simple, "r.rate", "A.invest", &w, &m);
     ck_assert_str_eq(m.name, "D.map[r.rate][A.invest]");
     ck_assert(m.x.n == MAP_COLUMNS && m.y.n == MAP_ROWS && m.is_exact);
@@ -95,7 +80,7 @@ START_TEST(lines_are_where_they_draw_level)
     struct loaded l;
     struct weighing *w;
     struct choice_map m;
-    double a = annuity();
+    double a = restated_annuity();
     size_t expected = 0;
     find(&l, &simple, "r.rate", "A.invest", &w, &m);
     for (size_t i = 0; i < m.x.n * m.y.n; i++) {

@@ -69,3 +69,11 @@ void restated_check(const char *what, double x, double expected, double size, do
     ck_assert_msg(fabs(x - expected) <= tolerance * most, "%s: %.17g, expected %.17g", what, x,
                   expected);
 }
+
+double restated_annuity(void)
+{
+    long double sum = 0;
+    for (int y = 0; y < 10; y++)
+        sum += powl(1.05L, -(y + 0.5L));
+    return (double)sum;
+}

@@ -35,4 +35,16 @@ double restated_worth(const struct loaded *l, const struct weighing *w, const ch
 /* Fails unless within `tolerance` of the greater of both and `size`. */
 void restated_check(const char *what, double x, double expected, double size, double tolerance);
 
+/* What their registers have in common: ten years at 5 %, and a hazard that always ends in a
+ * loss. */
+#define SETTINGS                                                                                   \
+    "register: {title: T, currency: EUR, prices: 2026, counts: [bay], horizon: 10 a, discount: 5 " \
+    "% per a}\n"
+#define LOST(damage)                                                                               \
+    "response: {never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: {loss: {category: " \
+    "c, is: " damage "}}}}"
+
+/* Present value of 1 per year in the middle of each of these ten years. */
+double restated_annuity(void);
+
 #endif

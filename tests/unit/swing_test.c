@@ -27,15 +27,6 @@ static void teardown(void)
 /* What is equal by the structure differs by rounding only. */
 #define EXACT 1e-9
 
-/* Present value of 1 per year in the middle of each of ten years at 5 %. */
-static double annuity(void)
-{
-    long double sum = 0;
-    for (int y = 0; y < 10; y++)
-        sum += powl(1.05L, -(y + 0.5L));
-    return (double)sum;
-}
-
 static void find(struct loaded *l, const struct restated *r, struct weighing **w,
                  struct input_swings *s)
 {
@@ -53,12 +44,6 @@ static const struct input_swing *swing_of(const struct input_swings *s, const ch
     return NULL;
 }
 
-#define SETTINGS                                                                                   \
-    "register: {title: T, currency: EUR, prices: 2026, counts: [bay], horizon: 10 a, discount: 5 " \
-    "% per a}\n"
-#define LOST(damage)                                                                               \
-    "response: {never: {outcome: lost}}, outcomes: {lost: {name: Lost, damage: {loss: {category: " \
-    "c, is: " damage "}}}}"
 #define SAVES                                                                                      \
     "options: {A: {name: A, invest: 900 EUR, change: {hazards: {H: {frequency: 0.2 * was}}}}}\n"
 #define DECIDE "decisions: {D: {question: What?, options: [A]}}\n"
@@ -85,7 +70,7 @@ START_TEST(one_option)
     struct loaded l;
     struct weighing *w;
     struct input_swings s;
-    double a = annuity();
+    double a = restated_annuity();
     find(&l, &r, &w, &s);
     ck_assert_uint_eq(s.list.n, 2); /* what varies and what reaches nothing do not swing */
     ck_assert(s.is_exact && s.list.at[0].is_exact && s.list.at[1].is_exact);
@@ -122,7 +107,7 @@ START_TEST(curved_in_itself_alone)
     struct loaded l;
     struct weighing *w;
     struct input_swings s;
-    double a = annuity();
+    double a = restated_annuity();
     find(&l, &r, &w, &s);
     restated_check("now", restated_worth(&l, w, "A"), 400 * (4 - 1 / 3.) * a - 900, 0, EXACT);
     const struct input_swing *x = swing_of(&s, "v.value");
@@ -149,7 +134,7 @@ START_TEST(curved_in_another)
     struct loaded l;
     struct weighing *w;
     struct input_swings s;
-    double a = annuity(), proportion = (6 + 13 / 3.) / 10;
+    double a = restated_annuity(), proportion = (6 + 13 / 3.) / 10;
     find(&l, &r, &w, &s);
     const struct input_swing *x = swing_of(&s, "v.value"), *y = swing_of(&s, "u.value");
     ck_assert(!x->is_exact && y->is_exact && !s.is_exact);
@@ -176,7 +161,7 @@ START_TEST(curved_in_both)
     struct loaded l;
     struct weighing *w;
     struct input_swings s;
-    double a = annuity();
+    double a = restated_annuity();
     find(&l, &r, &w, &s);
     const struct input_swing *x = swing_of(&s, "v.value");
     ck_assert(!x->is_exact);
