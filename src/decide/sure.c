@@ -226,7 +226,7 @@ ohmen_status sure_value_find(struct figures *f, const char *name, const struct s
     struct weighing *w;
     struct nearest near;
     struct sure *x = NEW(f->arena, struct sure);
-    enum sure_kind kind;
+    enum sure_kind kind = SURE_BEST; /* sure_is_named: it is found */
     const char *mark = find_mark(name, &kind);
     const char *decision = arena_strn(f->arena, name, (size_t)(mark - name));
     ohmen_status status = weigh_compile(f, decision, &w, e);
