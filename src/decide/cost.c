@@ -41,8 +41,13 @@ static void add_at(struct costing *c, node_id amount, double year)
 /* What is paid behind the horizon is no cost. */
 static void add_first(struct costing *c, node_id invest)
 {
+    const struct register_settings *s = c->m->f->base->settings;
     day on = c->option->invest->on;
-    double year = on == DAY_NONE ? 0 : timeline_year(c->m->f->base->settings, on);
+    double year = on == DAY_NONE ? 0 : timeline_year(s, on);
+    if (c->life.later > 0)
+        year = fmax(floor((on == DAY_NONE ? 0 : horizon_years(s, on)) + c->life.later +
+                          SAME_INSTANT),
+                    0);
     if (year < c->m->horizon)
         add_at(c, invest, year);
 }
@@ -55,6 +60,7 @@ static void add_renewals(struct costing *c, node_id invest)
     double first = on == DAY_NONE ? 0 : horizon_years(s, on);
     if (first > 0)
         first = fmin(first, timeline_year(s, on) + LAST_DAY);
+    first += c->life.later;
     for (size_t k = 1; k <= life_renewals(&c->life); k++) {
         double year = floor(first + (double)k * c->life.length + SAME_INSTANT);
         if (year >= 0 && year < c->m->horizon)
@@ -77,9 +83,10 @@ static node_id node_of(const struct figures *f, const struct compiled *option, e
 }
 
 /* The option's figures are there already. */
-static struct payments paid_once(const struct money *m, const struct compiled *option)
+static struct payments paid_once(const struct money *m, const struct compiled *option,
+                                 double later)
 {
-    struct costing c = {m, option->object->data, life_of(m->f, option->id), {0}};
+    struct costing c = {m, option->object->data, life_later(m->f, option->id, later), {0}};
     node_id invest = node_of(m->f, option, PROPERTY_INVEST);
     node_id residual = node_of(m->f, option, PROPERTY_RESIDUAL);
     if (invest != NODE_NONE) {
@@ -93,13 +100,18 @@ static struct payments paid_once(const struct money *m, const struct compiled *o
 
 struct payments cost_once(const struct money *m, const char *option)
 {
-    return paid_once(m, compiled_of(m->b, option));
+    return cost_once_later(m, option, 0);
 }
 
-static node_id running_between(const struct money *m, const struct compiled *option, double from,
-                               double to)
+struct payments cost_once_later(const struct money *m, const char *option, double later)
 {
-    struct life life = life_of(m->f, option->id);
+    return paid_once(m, compiled_of(m->b, option), later);
+}
+
+static node_id running_between(const struct money *m, const struct compiled *option, double later,
+                               double from, double to)
+{
+    struct life life = life_later(m->f, option->id, later);
     node_id running = node_of(m->f, option, PROPERTY_RUNNING);
     from = fmax(fmax(life.begin, 0), from);
     to = fmin(life_end(&life), to);
@@ -110,16 +122,22 @@ static node_id running_between(const struct money *m, const struct compiled *opt
 
 node_id cost_running(const struct money *m, const char *option, double from, double to)
 {
-    return running_between(m, compiled_of(m->b, option), from, to);
+    return cost_running_later(m, option, 0, from, to);
+}
+
+node_id cost_running_later(const struct money *m, const char *option, double later, double from,
+                           double to)
+{
+    return running_between(m, compiled_of(m->b, option), later, from, to);
 }
 
 static void add_present(struct building *b, const struct money *m)
 {
     struct parts parts = {0};
-    struct payments once = paid_once(m, b->unit);
+    struct payments once = paid_once(m, b->unit, 0);
     for (size_t i = 0; i < once.n; i++)
         *array_push(m->f->arena, &parts) = cost_paid(m, &once.at[i]);
-    node_id running = running_between(m, b->unit, 0, m->horizon);
+    node_id running = running_between(m, b->unit, 0, 0, m->horizon);
     if (running != NODE_NONE)
         *array_push(m->f->arena, &parts) = running;
     if (b->unit->n)

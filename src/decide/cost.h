@@ -19,11 +19,15 @@ struct payment {
 };
 struct payments ARRAY_BODY(struct payment);
 struct payments cost_once(const struct money *m, const char *option);
+/* The same of an option that is applied so many years later than its dates say. */
+struct payments cost_once_later(const struct money *m, const char *option, double later);
 /* Its present value. */
 node_id cost_paid(const struct money *m, const struct payment *p);
 
 /* The present value of its running cost between two times; NODE_NONE: there is none. */
 node_id cost_running(const struct money *m, const char *option, double from, double to);
+node_id cost_running_later(const struct money *m, const char *option, double later, double from,
+                           double to);
 
 /* The present value of what the options of an alternative cost; they were compiled. */
 node_id cost_present(const struct money *m, const struct alternative *alt);

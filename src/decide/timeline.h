@@ -14,6 +14,22 @@ struct service {
 
 struct service timeline_service(const struct figures *f, const char *option, double horizon);
 
+/* What a path through a decision has done so far: options, each as many years later than its dates
+ * say as it is applied behind the start; and changes, each from a time on. */
+struct applied {
+    const char *option;
+    double later;
+};
+struct changed {
+    const char *name; /* of the change, without brackets */
+    const struct node *change;
+    double from;
+};
+struct path {
+    ARRAY(struct applied) applied; /* in byte order of options */
+    ARRAY(struct changed) changed;
+};
+
 /* A stretch of the horizon in which the same options are in service, renewed the same number of
  * times, and commissioned or not. */
 struct stretch {
@@ -27,6 +43,14 @@ struct stretches ARRAY_BODY(struct stretch);
  * in a stretch contradicts or leaves the register wrong. */
 ohmen_status timeline_cut(struct figures *f, const struct alternative *x, double horizon,
                           struct stretches *out, ohmen_error *e);
+
+/* The same of a path. */
+ohmen_status timeline_cut_path(struct figures *f, const struct path *p, double horizon,
+                               struct stretches *out, ohmen_error *e);
+
+/* Does it matter from time `at` on, when the option was applied: something of it is yet to come,
+ * ends, is renewed, or is dated from its service? */
+bool timeline_is_dated(struct figures *f, const struct path *p, const struct applied *x, double at);
 
 /* The year of the horizon in which a day lies, from 0; what is paid before is paid at its
  * start. By the calendar: the last day of a leap year lies in that year. */

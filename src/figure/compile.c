@@ -249,6 +249,7 @@ ohmen_status compile_references_at(struct figures *f, const struct variant *v,
         const struct object *to = model_find(v->model, r->id);
         if (r->trace || r->later || !to || !kinds[to->kind].computes || to->kind == KIND_STATE ||
             to->kind == KIND_GROUP || to->kind == KIND_COMMON_CAUSE ||
+            (o->kind == KIND_STATE && to->kind == KIND_HAZARD) ||
             (path && !text_equal(path, r->path)))
             continue;
         ohmen_status status = compile_one_reference(f, v, o, r, to, e);

@@ -1,11 +1,14 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Operating states: their shares of time, and hazards as the mean over them.
+/* States: their shares of time or probabilities, and hazards as the mean over them.
  *
  * The hazard in each combination of states is a unit of its own; the mean reads those. The
  * network is in one combination at each time, so that frequencies and risks are weighted by
  * the shares of time, and what is said of one occurrence (a probability, a damage) by how
  * often it occurs in each. Owns nothing beyond the arena of the figures. */
+#include <math.h>
+
 #include "figure/horizon.h"
+#include "figure/service.h"
 #include "figure/states.h"
 
 /* --- shares --- */
@@ -22,30 +25,142 @@ static node_id rest_share(struct building *b, size_t n, const node_id *others)
     return graph_op1(g, OP_COMPLEMENT, n == 1 ? others[0] : graph_op(g, OP_SUM, n, others));
 }
 
-ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
-                           struct compiled **out, ohmen_error *e)
+static void add_share(struct building *b, const struct object *o, size_t i, node_id n,
+                      const char *text)
 {
     const struct state *s = o->data;
-    struct building b;
-    if (s->is.n)
-        return error_set(e, OHMEN_COMPUTE,
-                         "\"%s\" is unknown, which this version stores but does not evaluate",
-                         o->id);
+    compiled_add(b, PROPERTY_SHARE, state_values(s)->keys[i], NULL, n, s->source, text);
+}
+
+/* Operating states: the shares of time. */
+static void add_shares_of_time(struct building *b, const struct object *o)
+{
+    const struct state *s = o->data;
     const struct quantity *const *shares = s->varies.at;
-    node_id *nodes = NEW_ARRAY(f->arena, s->varies.n, node_id);
+    node_id *nodes = NEW_ARRAY(b->figures->arena, s->varies.n, node_id);
     size_t n = 0;
-    compiled_begin(f, v, o, o->id, &b);
     for (size_t i = 0; i < s->varies.n; i++) {
         if (is_rest(shares[i]))
             continue;
-        nodes[n] = compile_quantity(&b, shares[i]);
-        compiled_add(&b, PROPERTY_SHARE, s->varies.keys[i], NULL, nodes[n++], s->source,
-                     quantity_reads(f, shares[i]));
+        nodes[n] = compile_quantity(b, shares[i]);
+        add_share(b, o, i, nodes[n++], quantity_reads(b->figures, shares[i]));
     }
     for (size_t i = 0; i < s->varies.n; i++)
         if (is_rest(shares[i]))
-            compiled_add(&b, PROPERTY_SHARE, s->varies.keys[i], NULL, rest_share(&b, n, nodes),
-                         s->source, NULL);
+            add_share(b, o, i, rest_share(b, n, nodes), NULL);
+}
+
+/* --- what is unknown --- */
+
+/* An input that is 1 with this probability, and otherwise 0. */
+static node_id compile_whether(struct building *b, double p)
+{
+    static const double values[] = {0, 1};
+    struct arena *a = b->figures->arena;
+    if (p <= 0 || p >= 1)
+        return compile_const(b, p <= 0 ? 0 : 1, dim_number, NULL);
+    double *probabilities = NEW_ARRAY(a, 2, double);
+    struct quantity *q = NEW(a, struct quantity);
+    probabilities[0] = 1 - p;
+    probabilities[1] = p;
+    *q = (struct quantity){.shape = SHAPE_DISCRETE, .dim = dim_number, .n = 2, .times = 1};
+    q->values = arena_copy(a, values, sizeof values);
+    q->probabilities = probabilities;
+    q->text = arena_printf(a, "true with %s %%", text_double(NEW_ARRAY(a, 32, char), 100 * p));
+    return compile_quantity(b, q);
+}
+
+static const struct quantity *probability_at(const struct state *s, size_t i)
+{
+    return ((const struct quantity *const *)s->is.at)[i];
+}
+
+/* The state that takes what the others leave: the one that is marked, or the likeliest. */
+static size_t remainder_of(const struct state *s)
+{
+    size_t likeliest = 0;
+    for (size_t i = 0; i < s->is.n; i++) {
+        if (is_rest(probability_at(s, i)))
+            return i;
+        if (expr_constant(probability_at(s, i)->expr) >
+            expr_constant(probability_at(s, likeliest)->expr))
+            likeliest = i;
+    }
+    return likeliest;
+}
+
+/* The asset is in one state for good or ill. Each state but one is an input that is 1 or 0, given
+ * that those before it are not the case; so that shares are linear in independent inputs, their
+ * means the probabilities, and exactly one of them is 1 in each sample. */
+static void add_probabilities(struct building *b, const struct object *o)
+{
+    const struct state *s = o->data;
+    struct graph *g = b->figures->graph;
+    size_t last = remainder_of(s);
+    double left = 1;
+    node_id none_before = NODE_NONE;
+    for (size_t i = 0; i < s->is.n; i++) {
+        const struct quantity *q = probability_at(s, i);
+        if (i == last)
+            continue;
+        double p = expr_constant(q->expr);
+        node_id whether = compile_whether(b, left > 0 ? fmin(p / left, 1) : 0);
+        node_id share = none_before == NODE_NONE ? whether
+                                                 : graph_op2(g, OP_MULTIPLY, none_before, whether);
+        node_id not = graph_op1(g, OP_COMPLEMENT, whether);
+        add_share(b, o, i, share, quantity_reads(b->figures, q));
+        none_before = none_before == NODE_NONE ? not : graph_op2(g, OP_MULTIPLY, none_before, not);
+        left -= p;
+    }
+    if (none_before == NODE_NONE)
+        none_before = compile_const(b, 1, dim_number, NULL);
+    add_share(b, o, last, none_before, NULL);
+}
+
+const char *states_reset(const struct figures *f, const struct variant *v, const struct state *s,
+                         double *when)
+{
+    const char *to = NULL;
+    for (size_t i = 0; i < v->n; i++) {
+        const struct change *c = &v->changes[i];
+        const char *option = c->sort == CHANGE_RENEWAL  ? c->option
+                             : c->sort == CHANGE_OPTION ? c->name
+                                                        : NULL;
+        const char *sets = option ? state_renewed(s, option) : NULL;
+        double at = option ? life_of(f, option).begin + (c->sort == CHANGE_RENEWAL ? c->moved : 0)
+                           : 0;
+        if (sets && (!to || at >= *when)) {
+            to = sets;
+            *when = at;
+        }
+    }
+    return to;
+}
+
+/* As the option leaves it that renews it. */
+static void add_renewed(struct building *b, const struct object *o, const char *to)
+{
+    const struct rows *states = state_values(o->data);
+    for (size_t i = 0; i < states->n; i++) {
+        bool is = text_equal(states->keys[i], to);
+        add_share(b, o, i, compile_const(b, is, dim_number, NULL), is ? "renewed" : "not so");
+    }
+}
+
+ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
+                           struct compiled **out, ohmen_error *e)
+{
+    struct building b;
+    (void)e;
+    compiled_begin(f, v, o, o->id, &b);
+    double when;
+    const char *renewed = states_reset(f, v, o->data, &when);
+    if (renewed)
+        add_renewed(&b, o, renewed);
+    else if (((const struct state *)o->data)->is.n)
+        add_probabilities(&b, o);
+    else
+        add_shares_of_time(&b, o);
     compiled_end(&b);
     *out = b.unit;
     return OHMEN_OK;
@@ -74,7 +189,7 @@ static figure_id share_of(const struct mixing *m, const struct combination *c, s
 {
     const struct state *s = c->states[i]->data;
     return compiled_figure(m->f, state_unit(m, c->states[i]), PROPERTY_SHARE,
-                           s->varies.keys[c->values[i]], NULL);
+                           state_values(s)->keys[c->values[i]], NULL);
 }
 
 /* What is not in the hazard of the register would stand in no list. */
@@ -393,7 +508,8 @@ static const char *combination_name(struct arena *a, const struct combination *c
     text_init(&t, a);
     for (size_t k = 0; k < c->n; k++) {
         const struct state *s = c->states[k]->data;
-        text_printf(&t, "%s%s=%s", k ? "+" : "", c->states[k]->id, s->varies.keys[c->values[k]]);
+        text_printf(&t, "%s%s=%s", k ? "+" : "", c->states[k]->id,
+                    state_values(s)->keys[c->values[k]]);
     }
     return text_str(&t);
 }

@@ -200,7 +200,8 @@ struct change {
     const char *state, *value; /* of a state */
     const struct node *node;   /* bound; NULL: changes nothing, or of an option */
     const char *option;        /* of a renewal or a commissioning period */
-    size_t renewal;            /* which one, from 1 */
+    double moved;              /* of a renewal: by how many years later than with the option as its
+                                  dates say something is new */
 };
 
 /* A set of changes and the model that they make: that of options, states and what is made up, over
@@ -285,16 +286,16 @@ struct figures {
 ohmen_status figures_new(struct arena *a, const struct model *base, const char *perspective,
                          day date, struct figures **out, ohmen_error *e);
 
-/* The variant of a set of options, in any order, and of their renewals ("FIT:2049") and
- * commissioning periods ("FIT:early"). OHMEN_UNKNOWN for what is no option, has no such renewal or
+/* The variant of a set of options, in any order, and of their renewals ("FIT:2049", or
+ * "FIT:2031-04-01" where an option is applied later than its dates say) and commissioning periods
+ * ("FIT:early"). OHMEN_UNKNOWN for what is no option, has no such renewal or
  * period, or stands twice, OHMEN_COMPUTE when they contradict or leave the register wrong: the
  * message is the first diagnostic. */
 ohmen_status figures_variant(struct figures *f, size_t n, const char *const *options,
                              const struct variant **out, ohmen_error *e);
 
-/* The variant with an operating state fixed besides: "T2-OUT=a-out". OHMEN_UNKNOWN when there
- * is no such state, or another of its object is fixed already; OHMEN_COMPUTE as above, and for
- * a state that is unknown (`is`), which this version does not evaluate. */
+/* The variant with a state fixed besides: "T2-OUT=a-out". OHMEN_UNKNOWN when there
+ * is no such state, or another of its object is fixed already; OHMEN_COMPUTE as above. */
 ohmen_status figures_variant_in(struct figures *f, const struct variant *base, const char *state,
                                 const struct variant **out, ohmen_error *e);
 

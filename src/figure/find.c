@@ -404,7 +404,7 @@ struct looking {
 static enum walk look_at_field(void *ctx, const struct visit *v)
 {
     struct looking *l = ctx;
-    if (!(v->field->flags & LATER) && !(l->unknown && v->field->type == FIELD_ROWS))
+    if (!(v->field->flags & LATER))
         return WALK_INTO;
     text_printf(&l->keys, "%s%s", l->keys.n ? ", " : "", v->path);
     return WALK_PAST;
@@ -414,7 +414,6 @@ static enum walk look_at_field(void *ctx, const struct visit *v)
 static const char *unused_keys(struct arena *a, const struct object *o)
 {
     struct looking l = {.arena = a};
-    l.unknown = o->kind == KIND_STATE && ((const struct state *)o->data)->is.n;
     struct walker w = {.ctx = &l, .enter = look_at_field};
     text_init(&l.keys, a);
     walk_table(a, kinds[o->kind].table, o->node, o->data, &w);
@@ -448,7 +447,7 @@ static void unused_in_change(struct arena *a, const struct model *m, const struc
 static void unused_in_state(struct arena *a, const struct model *m, const struct object *o,
                             struct unused *out)
 {
-    for (size_t i = 0; i < ((const struct state *)o->data)->varies.n; i++) {
+    for (size_t i = 0; i < state_values(o->data)->n; i++) {
         struct model_change c = model_state_change(a, o, i);
         unused_in_change(a, m, &c, c.name, out);
     }

@@ -20,10 +20,19 @@ struct life life_of(const struct figures *f, const char *option)
     const struct register_settings *s = f->base->settings;
     const struct option *o = model_get(f->base, KIND_OPTION, option);
     return (struct life){.begin = o->in_service == DAY_NONE ? 0 : horizon_years(s, o->in_service),
+                         .later = 0,
                          .length = o->life ? expr_constant(o->life->expr) : INFINITY,
                          .renewed = o->renewed,
                          .early = o->early ? expr_constant(o->early->lasts->expr) : 0,
                          .horizon = horizon_length(s)};
+}
+
+struct life life_later(const struct figures *f, const char *option, double later)
+{
+    struct life l = life_of(f, option);
+    l.begin += later;
+    l.later = later;
+    return l;
 }
 
 double life_end(const struct life *l)
@@ -85,8 +94,21 @@ day day_years_behind(day d, double years)
 
 const char *life_label(struct arena *a, const struct figures *f, const struct life *l, size_t k)
 {
+    char text[DATE_TEXT];
     day d = day_years_behind(horizon_start(f->base->settings), life_renewal(l, k));
-    return arena_printf(a, "%d", date_year(d));
+    return l->later > 0 ? arena_str(a, date_write(text, d)) : arena_printf(a, "%d", date_year(d));
+}
+
+double life_moved(struct arena *a, const struct figures *f, const char *option, const char *label)
+{
+    struct life l = life_of(f, option);
+    day d;
+    for (size_t k = life_renewals(&l); k > 0; k--)
+        if (text_equal(life_label(a, f, &l, k), label))
+            return life_renewal(&l, k) - l.begin;
+    if (!date_read(label, &d))
+        return 0;
+    return fmax(horizon_years(f->base->settings, d) - l.begin, 0);
 }
 
 /* --- renewals --- */
@@ -182,11 +204,11 @@ static void renew_section(const struct renewing *w, const struct node *change, e
 }
 
 const struct node *renewal_change(struct figures *f, const struct model *m, const char *option,
-                                  size_t k)
+                                  double years)
 {
     const struct node *change = model_option_change(f->base, option).node;
     struct life life = life_of(f, option);
-    struct renewing w = {f, m, &life, (double)k * life.length};
+    struct renewing w = {f, m, &life, years};
     struct node *out = node_map(f->arena, change->place);
     renew_section(&w, change, KIND_ELEMENT, renewed_element, out);
     renew_section(&w, change, KIND_RATE, renewed_rate, out);

@@ -14,6 +14,7 @@
 
 struct life {
     double begin;  /* may lie before the horizon, or behind it */
+    double later;  /* by how much later than its dates say, which is in `begin` */
     double length; /* INFINITY: as long as the horizon */
     bool renewed;
     double early;   /* how long it is commissioned; 0: not at all */
@@ -21,6 +22,8 @@ struct life {
 };
 
 struct life life_of(const struct figures *f, const char *option);
+/* The same of an option that is applied so many years later than its dates say. */
+struct life life_later(const struct figures *f, const char *option, double later);
 
 /* The first instant at which the option is not in service any more; may lie before its horizon. */
 double life_end(const struct life *l);
@@ -42,13 +45,19 @@ bool life_is_early(const struct life *l, double t);
 /* The day that lies `years` behind a day, by the rule of horizon_years, rounded to a day. */
 day day_years_behind(day d, double years);
 
-/* "2049": the calendar year of the k-th renewal. */
+/* "2049": the calendar year of the k-th renewal; the day, where the option is applied later than
+ * its dates say. */
 const char *life_label(struct arena *a, const struct figures *f, const struct life *l, size_t k);
 
-/* The change of the k-th renewal of an option over `m`, the register as the changes of all options
- * leave it: elements that the option adds, and elements and rates whose `since` it sets, are new
- * again. NULL where it adds and dates nothing. */
+/* By how many years behind its dates something that comes with the option is new at the renewal
+ * with this label, or where it is applied so that it begins at the day of the label; 0: there is
+ * none. */
+double life_moved(struct arena *a, const struct figures *f, const char *option, const char *label);
+
+/* What makes what comes with an option newer by so many years, over `m`, the register as the
+ * changes of all options leave it: elements that the option adds, and elements and rates whose
+ * `since` it sets. NULL where it adds and dates nothing. */
 const struct node *renewal_change(struct figures *f, const struct model *m, const char *option,
-                                  size_t k);
+                                  double years);
 
 #endif

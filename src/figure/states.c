@@ -38,7 +38,7 @@ static ohmen_status reaches(struct growing *g, const struct variant *at, const s
 {
     const struct state *s = state->data;
     *out = false;
-    for (size_t i = 0; i < s->varies.n && !*out; i++) {
+    for (size_t i = 0; i < state_values(s)->n && !*out; i++) {
         const struct variant *in;
         struct model_change m = model_state_change(g->f->arena, state, i);
         if (!m.node)
@@ -73,7 +73,7 @@ static ohmen_status grow_fixed(struct growing *g, const struct variant *at,
     const struct state *s = state->data;
     const struct variant *in;
     size_t i = 0;
-    while (!text_equal(s->varies.keys[i], value))
+    while (!text_equal(state_values(s)->keys[i], value))
         i++;
     ohmen_status status = variant_in_state(g->f, at, state, i, &in, e);
     keep(g, arena_printf(g->f->arena, "%s=%s", state->id, value));
@@ -86,7 +86,7 @@ static ohmen_status grow_free(struct growing *g, const struct variant *at,
     const struct state *s = state->data;
     ohmen_status status = OHMEN_OK;
     keep_reaching(g, at, state->id); /* what changes the shares changes the mean */
-    for (size_t i = 0; status == OHMEN_OK && i < s->varies.n; i++) {
+    for (size_t i = 0; status == OHMEN_OK && i < state_values(s)->n; i++) {
         const struct variant *in;
         g->states[g->depth] = state;
         g->values[g->depth++] = i;

@@ -50,7 +50,12 @@ double variant_begins(const struct figures *f, const struct variant *v);
 /* Does a reference to this object compute anything? */
 bool reference_computes(const struct reference *r, const struct object *to);
 
-/* A state that varies: its shares. */
+/* What an option of the variant sets the state to, the last one to begin or to be renewed, and when
+ * in years from the start; NULL where there is none. */
+const char *states_reset(const struct figures *f, const struct variant *v, const struct state *s,
+                         double *when);
+
+/* A state: its shares of time, or the probabilities of what is unknown. */
 ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
                            struct compiled **out, ohmen_error *e);
 

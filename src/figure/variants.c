@@ -155,10 +155,22 @@ static void reach_changed(struct reaching *w, const struct node *change)
     }
 }
 
+/* The states that an option renews. */
+static void reach_renewed(struct reaching *w, const struct change *c)
+{
+    const char *option = c->sort == CHANGE_OPTION ? c->name : c->option;
+    const struct objects *states = &w->f->base->of[KIND_STATE];
+    for (size_t i = 0; option && i < states->n; i++)
+        if (state_renewed(states->at[i]->data, option))
+            reach(w, states->at[i]->id);
+}
+
 static void find_reached(struct figures *f, struct variant *v, size_t i)
 {
     struct reaching w = {.f = f, .variant = v, .reached = &v->reached[i]};
     struct change_nodes all = nodes_of(f, v, i);
+    if (v->changes[i].sort != CHANGE_EARLY)
+        reach_renewed(&w, &v->changes[i]);
     for (size_t k = 0; k < all.n; k++)
         reach_changed(&w, all.at[k]);
     for (size_t k = 0; k < w.todo.n; k++) {
@@ -182,8 +194,7 @@ static enum layer layer_of(const struct change *c)
 
 static double instant_of(const struct figures *f, const struct change *c)
 {
-    struct life life = life_of(f, c->option);
-    return life_renewal(&life, c->renewal);
+    return life_of(f, c->option).begin + c->moved;
 }
 
 /* What two renewals make new is as the later one leaves it. */
@@ -204,7 +215,7 @@ static void find_renewed(struct figures *f, size_t n, struct change *changes, co
 {
     for (size_t i = 0; i < n; i++)
         if (changes[i].sort == CHANGE_RENEWAL)
-            changes[i].node = renewal_change(f, m, changes[i].option, changes[i].renewal);
+            changes[i].node = renewal_change(f, m, changes[i].option, changes[i].moved);
     for (size_t i = 0; i < n; i++)
         if (changes[i].sort == CHANGE_RENEWAL)
             leave_to_later(f, n, changes, i);
@@ -316,17 +327,7 @@ static bool is_among(const char *name, size_t n, const char *const *names)
     return false;
 }
 
-/* "2049": which renewal of the option that is, or 0. */
-static size_t renewal_named(const struct figures *f, const char *option, const char *label)
-{
-    struct life life = life_of(f, option);
-    for (size_t k = life_renewals(&life); k > 0; k--)
-        if (text_equal(life_label(f->arena, f, &life, k), label))
-            return k;
-    return 0;
-}
-
-/* "OPTION:2049" or "OPTION:early"; the option is one of the names too. */
+/* "OPTION:2049", "OPTION:2031-04-01" or "OPTION:early"; the option is one of the names too. */
 static ohmen_status period_named(struct figures *f, const char *name, size_t n,
                                  const char *const *names, struct change *out, ohmen_error *e)
 {
@@ -346,8 +347,8 @@ static ohmen_status period_named(struct figures *f, const char *name, size_t n,
                                     "the option \"%s\" has no commissioning period", option);
     }
     *out = (struct change){.sort = CHANGE_RENEWAL, .name = name, .option = option};
-    out->renewal = renewal_named(f, option, colon + 1);
-    return out->renewal ? OHMEN_OK
+    out->moved = life_moved(f->arena, f, option, colon + 1);
+    return out->moved > 0 ? OHMEN_OK
                         : error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is not renewed in \"%s\"",
                                     option, colon + 1);
 }
@@ -409,7 +410,7 @@ ohmen_status variant_in_state(struct figures *f, const struct variant *base,
 {
     const struct state *s = state->data;
     struct model_change m = model_state_change(f->arena, state, value);
-    struct change c = {CHANGE_STATE, m.name, state->id, s->varies.keys[value], m.node, NULL, 0};
+    struct change c = {CHANGE_STATE, m.name, state->id, state_values(s)->keys[value], m.node, NULL, 0};
     return variant_and(f, base, &c, out, e);
 }
 
@@ -434,8 +435,8 @@ static ohmen_status unknown_value(struct figures *f, const struct object *o, con
     const struct state *s = o->data;
     struct nearest near;
     nearest_init(&near, value);
-    for (size_t i = 0; i < s->varies.n; i++)
-        nearest_offer(&near, s->varies.keys[i]);
+    for (size_t i = 0; i < state_values(s)->n; i++)
+        nearest_offer(&near, state_values(s)->keys[i]);
     return error_set(e, OHMEN_UNKNOWN, "\"%s\" has no state \"%s\"%s", o->id, value,
                      nearest_hint(f->arena, &near));
 }
@@ -448,13 +449,10 @@ ohmen_status figures_variant_in(struct figures *f, const struct variant *base, c
     const struct object *o = model_find(base->stem->model, id);
     if (!o || o->kind != KIND_STATE)
         return unknown_state(f, base->stem->model, id, e);
-    const struct state *s = o->data;
-    if (s->is.n)
-        return error_set(e, OHMEN_COMPUTE,
-                         "\"%s\" is unknown, which this version stores but does not evaluate", id);
-    while (i < s->varies.n && !text_equal(s->varies.keys[i], value))
+    const struct rows *values = state_values(o->data);
+    while (i < values->n && !text_equal(values->keys[i], value))
         i++;
-    if (i == s->varies.n)
+    if (i == values->n)
         return unknown_value(f, o, value, e);
     if (variant_state(base, id))
         return error_set(e, OHMEN_UNKNOWN, "the state \"%s\" is named twice", id);
@@ -655,7 +653,7 @@ double variant_begins(const struct figures *f, const struct variant *v)
         if (c->sort != CHANGE_OPTION && !renewal)
             continue;
         struct life life = life_of(f, renewal ? c->option : c->name);
-        last = fmax(last, life_renewal(&life, renewal ? c->renewal : 0));
+        last = fmax(last, life.begin + (renewal ? c->moved : 0));
     }
     return last < horizon ? last : 0;
 }

@@ -87,21 +87,75 @@ static void check_when(struct checking *c, const struct rows *states, const stru
     }
 }
 
+/* What is unknown is one of several states, each with a plain probability. */
+static void check_probabilities(struct checking *c, const struct state *s, const struct node *is)
+{
+    for (size_t i = 0; i < s->is.n; i++) {
+        const struct quantity *q = plain_share(&s->is, i);
+        if (q->expr && !quantity_is_constant(q))
+            diag_add(c->diags, is->pairs[i].value->place, "a plain number is needed here");
+    }
+}
+
+/* Transitions lead from one state to another, and only what is unknown makes them. */
+static void check_becomes(struct checking *c, const struct state *s, const struct node *becomes)
+{
+    const struct rows *states = state_values(s);
+    expect_keys(c, states, becomes);
+    for (size_t i = 0; becomes && i < becomes->n; i++) {
+        const struct pair *from = &becomes->pairs[i];
+        expect_keys(c, states, from->value);
+        for (size_t k = 0; k < from->value->n; k++)
+            if (text_equal(from->value->pairs[k].key, from->key))
+                diag_add(c->diags, from->value->pairs[k].place,
+                         "\"%s\" cannot become \"%s\": it stays what it is", from->key, from->key);
+    }
+}
+
+/* Outcomes exist, and lead to a state. */
+static void check_failures(struct checking *c, const struct state *s, const struct node *failures)
+{
+    for (size_t i = 0; i < s->failures.n; i++) {
+        const struct hazard *h = model_get(c->model, KIND_HAZARD, s->failures.keys[i]);
+        const struct rows *to = &((const struct rows *)s->failures.at)[i];
+        for (size_t k = 0; h && k < to->n; k++) {
+            const struct pair *row = &failures->pairs[i].value->pairs[k];
+            expect_row(c, &h->outcomes, to->keys[k], row->place, "outcome");
+            expect_row(c, state_values(s), ((const char *const *)to->at)[k], row->value->place,
+                       "state");
+        }
+    }
+}
+
+/* What varies from time to time is neither surveyed nor renewed. */
+static void check_only_unknown(struct checking *c, const struct object *o)
+{
+    static const char *const keys[] = {"becomes", "failures", "renewed-by", "tests"};
+    const struct state *s = o->data;
+    for (size_t i = 0; i < sizeof keys / sizeof *keys && !s->is.n; i++) {
+        const struct node *value = node_get(o->node, keys[i]);
+        if (value)
+            diag_add(c->diags, value->place,
+                     "\"%s\" belongs to a state that \"is\" unknown, and this one varies", keys[i]);
+    }
+}
+
 void check_state(struct checking *c, const struct object *o)
 {
     const struct state *s = o->data;
-    const struct rows *states = s->is.n ? &s->is : &s->varies;
+    const struct rows *states = state_values(s);
     const struct node *node = node_get(o->node, s->is.n ? "is" : "varies");
     if (!node) {
         diag_add(c->diags, o->node->place, "this state has no values");
         return;
     }
     check_shares(c, node, states, plain_share, "probabilities of the states");
+    check_only_unknown(c, o);
+    if (s->is.n)
+        check_probabilities(c, s, node);
     check_when(c, states, node_get(o->node, "when"));
-    const struct node *becomes = node_get(o->node, "becomes");
-    expect_keys(c, states, becomes);
-    for (size_t i = 0; becomes && i < becomes->n; i++)
-        expect_keys(c, states, becomes->pairs[i].value);
+    check_becomes(c, s, node_get(o->node, "becomes"));
+    check_failures(c, s, node_get(o->node, "failures"));
     const struct node *renewed = node_get(o->node, "renewed-by");
     for (size_t i = 0; i < s->renewed_by.n; i++)
         expect_row(c, states, ((const char *const *)s->renewed_by.at)[i],

@@ -59,7 +59,7 @@ static void check_pairs(struct state_check *s, const struct model_change *second
                         const struct object *other)
 {
     const struct state *data = other->data;
-    for (size_t i = 0; i < data->varies.n; i++) {
+    for (size_t i = 0; i < state_values(data)->n; i++) {
         struct model_change both[] = {model_state_change(s->arena, other, i), *second};
         if (both[0].node)
             under_changes(s, 2, both);
@@ -69,7 +69,7 @@ static void check_pairs(struct state_check *s, const struct model_change *second
 static void check_one_state(struct state_check *s, const struct object_list *all, size_t at)
 {
     const struct state *data = all->at[at]->data;
-    for (size_t i = 0; i < data->varies.n; i++) {
+    for (size_t i = 0; i < state_values(data)->n; i++) {
         struct model_change c = model_state_change(s->arena, all->at[at], i);
         const struct model *m = c.node ? under_changes(s, 1, &c) : NULL;
         if (m)

@@ -239,9 +239,16 @@ struct state {
     struct rows is, varies; /* of struct quantity * */
     struct rows when;       /* of const struct node * */
     struct rows becomes;    /* of struct rows of struct quantity * */
+    struct rows failures;   /* of struct rows of const char *, keyed by hazard and outcome */
     struct rows renewed_by; /* of const char *, keyed by option */
     struct rows tests;      /* of struct reading_test * */
 };
+/* The values of a state with their probabilities or shares: of `is` or of `varies`. */
+const struct rows *state_values(const struct state *s);
+/* Does what is unknown change with time? */
+bool state_evolves(const struct state *s);
+/* The state that an option sets, or NULL: it leaves it alone. */
+const char *state_renewed(const struct state *s, const char *option);
 
 struct investment {
     struct quantity *is;
@@ -285,6 +292,7 @@ struct decision {
     struct names focus, options, sees;
     struct rows choose, subtrees; /* of struct list of struct step * */
     struct quantity *every;
+    int64_t beliefs;
 };
 
 struct plan {

@@ -17,6 +17,8 @@ static const struct field flow_part =
     PART(QUANTITY, "Transitions per year", .dim = FREQUENCY, .flags = NOT_NEGATIVE);
 static const struct field flows_part = PART(ROWS, "Transitions to each state", .part = &flow_part);
 static const struct field name_part = PART(NAME, "The state that it enters");
+static const struct field names_part =
+    PART(ROWS, "The state that each outcome leads to", .part = &name_part);
 static const struct field reading_share =
     PART(QUANTITY, "Probability of each reading, in the order of reads", .dim = PROBABILITY,
          .flags = CERTAIN);
@@ -38,24 +40,43 @@ static const struct field reading_part = PART(STRUCT, "A survey", .table = &tabl
 static const struct group state_is_or_varies[] = {{true, {"is", "varies"}}};
 static const struct field state_fields[] = {
     F(struct state, name, "name", TEXT, "What is in a state"),
-    F(struct state, is, "is", ROWS, "Unknown states with their probabilities", .part = &share_part,
-      .flags = LATER),
+    F(struct state, is, "is", ROWS, "Unknown states with their probabilities", .part = &share_part),
     F(struct state, varies, "varies", ROWS, "Operating states with their shares of time",
       .part = &share_part),
     F(struct state, when, "when", ROWS, "What a state changes in the register",
       .part = &change_part),
     F(struct state, becomes, "becomes", ROWS, "Transitions per year, from state to state",
-      .part = &flows_part, .flags = LATER),
+      .part = &flows_part),
+    F(struct state, failures, "failures", ROWS,
+      "Outcomes of hazards behind which the asset is replaced or repaired",
+      .part = &names_part, .kinds = KIND_BIT(KIND_HAZARD)),
     F(struct state, renewed_by, "renewed-by", ROWS, "Options that set the state",
-      .part = &name_part, .kinds = KIND_BIT(KIND_OPTION), .flags = LATER),
-    F(struct state, tests, "tests", ROWS, "Surveys that read the state", .part = &reading_part,
-      .flags = LATER),
+      .part = &name_part, .kinds = KIND_BIT(KIND_OPTION)),
+    F(struct state, tests, "tests", ROWS, "Surveys that read the state", .part = &reading_part),
     SOURCE_FIELD(struct state),
     NOTE_FIELD(struct state),
 };
 const struct table table_state =
     TABLE(struct state, "state", state_fields, "A condition that is unknown, or an operating state",
           GROUPS(state_is_or_varies));
+
+const struct rows *state_values(const struct state *s)
+{
+    return s->is.n ? &s->is : &s->varies;
+}
+
+bool state_evolves(const struct state *s)
+{
+    return s->is.n && (s->becomes.n || s->failures.n);
+}
+
+const char *state_renewed(const struct state *s, const char *option)
+{
+    for (size_t i = 0; i < s->renewed_by.n; i++)
+        if (text_equal(s->renewed_by.keys[i], option))
+            return ((const char *const *)s->renewed_by.at)[i];
+    return NULL;
+}
 
 static const struct field investment_fields[] = {
     F(struct investment, is, "is", QUANTITY, "What it costs", .dim = MONEY,
@@ -146,13 +167,15 @@ static const struct field decision_fields[] = {
     F(struct decision, options, "options", REFS, "The options to weigh, beside doing nothing",
       .kinds = KIND_BIT(KIND_OPTION)),
     F(struct decision, choose, "choose", ROWS, "A tree of alternatives in several stages",
-      .part = &steps_part, .flags = LATER),
-    F(struct decision, subtrees, "subtrees", ROWS, "Named parts of the tree", .part = &steps_part,
-      .flags = LATER),
+      .part = &steps_part),
+    F(struct decision, subtrees, "subtrees", ROWS, "Named parts of the tree", .part = &steps_part),
     F(struct decision, every, "every", QUANTITY, "The choice comes again after this time",
-      .dim = TIME, .flags = CERTAIN | CONSTANT | POSITIVE | LATER),
+      .dim = TIME, .flags = CERTAIN | CONSTANT | POSITIVE),
     F(struct decision, sees, "sees", REFS, "States that are known at each choice",
-      .kinds = KIND_BIT(KIND_STATE), .flags = LATER),
+      .kinds = KIND_BIT(KIND_STATE)),
+    F(struct decision, beliefs, "beliefs", COUNT,
+      "Most beliefs about unknown states at one choice; 1000 where it is left out", .low = 1,
+      .high = 1000000),
     NOTE_FIELD(struct decision),
 };
 static const struct group decision_forms[] = {{true, {"options", "choose"}}};

@@ -35,7 +35,7 @@ struct model_change model_early_change(struct arena *a, const struct model *base
 struct model_change model_state_change(struct arena *a, const struct object *state, size_t value)
 {
     const struct state *s = state->data;
-    const char *key = s->varies.keys[value];
+    const char *key = state_values(s)->keys[value];
     struct model_change c = {
         "state", arena_printf(a, "%s=%s", state->id, key), NULL, state->node->place, NULL, {0}};
     for (size_t i = 0; i < s->when.n; i++)
@@ -55,7 +55,7 @@ const struct node *model_bind_change(struct arena *a, const struct model *base,
 
 static void add_varying(struct arena *a, const struct object *o, struct object_list *out)
 {
-    if (o && o->kind == KIND_STATE && ((const struct state *)o->data)->varies.n &&
+    if (o && o->kind == KIND_STATE && state_values(o->data)->n &&
         ((const struct state *)o->data)->when.n)
         *array_push(a, out) = o;
 }

@@ -261,7 +261,7 @@ static bool has_figures(const struct object *o)
 {
     enum kind k = o->kind;
     if (k == KIND_STATE)
-        return ((const struct state *)o->data)->varies.n > 0;
+        return state_values(o->data)->n > 0;
     return k == KIND_VALUE || k == KIND_RATE || k == KIND_TYPE || k == KIND_ELEMENT ||
            k == KIND_SCHEME || k == KIND_HAZARD;
 }
