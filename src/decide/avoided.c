@@ -103,21 +103,33 @@ static node_id less(struct worth *x, node_id before, node_id after)
 
 /* --- all hazards --- */
 
-node_id measure_now(struct worth *x, const struct measure *m)
+node_id measure_over(struct worth *x, const struct measure *m, size_t n_hazards,
+                     const struct compiled *const *hazards, double from, double to)
 {
-    node_id *alike = NEW_ARRAY(x->f->arena, x->w->hazards.n, node_id);
-    node_id *parts = NEW_ARRAY(x->f->arena, x->w->hazards.n + 1, node_id);
+    node_id *alike = NEW_ARRAY(x->f->arena, n_hazards, node_id);
+    node_id *parts = NEW_ARRAY(x->f->arena, n_hazards + 1, node_id);
     size_t n = 0, n_parts = 0;
-    for (size_t i = 0; i < x->w->hazards.n; i++) {
-        struct doing d = doing_of(x, m, x->w->hazards.at[i].now);
+    for (size_t i = 0; i < n_hazards; i++) {
+        struct doing d = doing_of(x, m, hazards[i]);
         if (d.mean != NODE_NONE && d.of_year)
-            parts[n_parts++] = by_year(x, m, &d, 0, x->w->horizon);
+            parts[n_parts++] = by_year(x, m, &d, from, to);
         else if (d.mean != NODE_NONE)
             alike[n++] = d.mean;
     }
-    if (n > 0 || n_parts == 0)
-        parts[n_parts++] = steadily(x, m, worth_sum(x, n, alike, m->dim), 0, x->w->horizon);
-    return worth_sum(x, n_parts, parts, m->sum);
+    if (n > 0)
+        parts[n_parts++] = steadily(x, m, worth_sum(x, n, alike, m->dim), from, to);
+    return n_parts ? worth_sum(x, n_parts, parts, m->sum) : NODE_NONE;
+}
+
+node_id measure_now(struct worth *x, const struct measure *m)
+{
+    const struct compiled **now = NEW_ARRAY(x->f->arena, x->w->hazards.n, const struct compiled *);
+    for (size_t i = 0; i < x->w->hazards.n; i++)
+        now[i] = x->w->hazards.at[i].now;
+    node_id sum = measure_over(x, m, x->w->hazards.n, now, 0, x->w->horizon);
+    if (sum == NODE_NONE)
+        sum = steadily(x, m, worth_sum(x, 0, NULL, m->dim), 0, x->w->horizon);
+    return sum;
 }
 
 /* The hazard under a variant; NULL where that has no such hazard. */

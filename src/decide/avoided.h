@@ -29,6 +29,11 @@ struct measure {
 
 node_id worth_sum(struct worth *x, size_t n, const node_id *nodes, struct dim d);
 
+/* Of these hazards (NULL: there is none) from one time to another, as a present value; NODE_NONE
+ * where nothing is done. Hazards whose measure stays take one annuity together. */
+node_id measure_over(struct worth *x, const struct measure *m, size_t n_hazards,
+                     const struct compiled *const *hazards, double from, double to);
+
 /* Over the horizon as the register is now: hazards whose measure stays take one annuity
  * together. */
 node_id measure_now(struct worth *x, const struct measure *m);

@@ -8,6 +8,7 @@
 #include <string.h>
 
 #include "decide/alternatives.h"
+#include "decide/branching.h"
 #include "decide/cost.h"
 #include "decide/flow.h"
 #include "decide/worth.h"
@@ -281,14 +282,16 @@ ohmen_status weigh_compile(struct figures *f, const char *decision, struct weigh
         *out = known->exports;
         return OHMEN_OK;
     }
-    if (d->choose.n)
-        return error_set(
-            e, OHMEN_COMPUTE,
-            "\"%s\" is a decision tree, which this version stores but does not evaluate", decision);
     struct weighing *w = NEW(f->arena, struct weighing);
     w->id = model_find(f->base, decision)->id;
     w->decision = d;
     w->horizon = expr_constant(f->base->settings->horizon->expr);
+    if (d->choose.n) {
+        ohmen_status done = branching_compile(f, w, e);
+        if (done == OHMEN_OK)
+            *out = w;
+        return done;
+    }
     alternatives_find(f, &d->options, w);
     struct stretches *stretches = NEW_ARRAY(f->arena, w->alternatives.n, struct stretches);
     ohmen_status status = find_variants(f, w, stretches, e);

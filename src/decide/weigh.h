@@ -36,6 +36,8 @@
 
 #include "figure/figure.h"
 
+struct branching;
+
 #define WEIGH_ALL 8 /* options of which all combinations are weighed: 256 alternatives */
 
 /* What an alternative is worth to one perspective of the register. */
@@ -96,11 +98,12 @@ struct weighing {
     ARRAY(struct alternative) alternatives; /* doing nothing first, then by size and name */
     ARRAY(struct not_possible) left_out;
     bool only_pairs;
+    struct branching *branching; /* a tree (branching.h); NULL: options */
     size_t *order; /* indices of alternatives, best first; set by weigh_rank */
 };
 
-/* Compiles a decision. OHMEN_UNKNOWN when there is none of that id, OHMEN_COMPUTE when it is
- * a tree, which this version stores but does not evaluate. A decision is compiled once
+/* Compiles a decision. OHMEN_UNKNOWN when there is none of that id, OHMEN_COMPUTE when it
+ * cannot be computed. A decision is compiled once
  * for a `struct figures`. */
 ohmen_status weigh_compile(struct figures *f, const char *decision, struct weighing **out,
                            ohmen_error *e);

@@ -143,7 +143,9 @@ static void add_renewed(struct building *b, const struct object *o, const char *
     const struct rows *states = state_values(o->data);
     for (size_t i = 0; i < states->n; i++) {
         bool is = text_equal(states->keys[i], to);
-        add_share(b, o, i, compile_const(b, is, dim_number, NULL), is ? "renewed" : "not so");
+        node_id n = graph_apart(b->figures->graph, compile_const(b, is, dim_number, NULL),
+                                ++b->figures->n_stated);
+        add_share(b, o, i, n, is ? "100 %" : "0 %");
     }
 }
 

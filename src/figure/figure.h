@@ -116,6 +116,13 @@
       "net cost over what society would spend on the deaths that it avoids; of the register: the " \
       "limit of that")                                                                             \
     X(FATALITY_WORTH, "per-fatality", "what society would spend to avoid one expected death")      \
+    X(TO_COME, "to-come",                                                                          \
+      "present value of cost and damage to come from a point of a tree on, the best branches taken") \
+    X(BELIEF, "belief", "probability of a state as it is believed at a point of a tree")           \
+    X(REACH, "reach", "probability of coming to a point of a tree, the best branches taken")       \
+    X(BECOMES, "becomes", "how often a state becomes another one")                                 \
+    X(READING_PRICE, "price-of-reading", "present value of what is paid before a reading")         \
+    X(READING_WORTH, "worth-of-reading", "what a reading is worth before it is paid for")          \
     X(TOGETHER, "together", "what options are worth together beyond what each is worth alone")     \
     X(RATIO, "benefit-cost-ratio", "avoided damage over cost, as present values")
 

@@ -1,0 +1,61 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What the files of branching share. Private to src/decide. */
+#ifndef DECIDE_BRANCHING_PARTS_H
+#define DECIDE_BRANCHING_PARTS_H
+
+#include <string.h>
+
+#include "decide/branching.h"
+#include "decide/cost.h"
+
+/* A tree that is being grown. */
+struct growing {
+    struct figures *f;
+    struct branching *b;
+    double horizon;
+    struct strmap points;    /* key of a place -> (void *)(number + 1) */
+    struct strmap stretches; /* what a path applied -> struct stretches */
+    struct strmap paths;     /* of points that were named so */
+    struct strmap believed;  /* stage and belief */
+    ARRAY(size_t) order;     /* points, each behind what it leads to */
+    size_t n_branches;
+    size_t *beliefs; /* by stage */
+};
+
+/* Grows the whole tree: points, branches, moves, beliefs, and the order. */
+ohmen_status branching_grow(struct growing *g, ohmen_error *e);
+
+/* The value of a certain quantity of the decision. */
+ohmen_status branching_certain(struct figures *f, const struct weighing *w,
+                               const struct quantity *q, double *out, ohmen_error *e);
+
+/* Nodes by hidden state; NODE_NONE is 0, or not asked for. */
+struct by_state {
+    node_id *at;
+};
+
+/* The section of a tree's figures under construction. */
+struct rolling {
+    struct worth worth;
+    struct branching *b;
+    struct strmap measured; /* measures of worlds that have a node already */
+    struct strmap stated;   /* quantities of the document that have a node already */
+};
+
+/* A quantity of the decision: one node, wherever it is asked for. */
+node_id branching_stated(struct rolling *r, const struct quantity *q);
+
+/* What comes to pass from the beginning of a branch on, if `end` (NULL: nothing) comes behind it:
+ * the cost where m is NULL, else the measure. Only of hidden states that are possible at its
+ * beginning. */
+struct by_state branching_back(struct rolling *r, const struct branch *b, const struct measure *m,
+                               const struct by_state *end);
+
+/* Values, policy, reach, as numbers; then figures of all of it, and the alternatives. */
+ohmen_status branching_roll_back(struct branching *b, struct figures *f, ohmen_error *e);
+ohmen_status branching_figures(struct branching *b, struct figures *f, ohmen_error *e);
+
+/* All branches: number 0 of point 0 first. `nothing` is not among them. */
+size_t branching_count(const struct branching *b);
+
+#endif

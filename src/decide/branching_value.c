@@ -1,0 +1,325 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What happens on branches as nodes, and rolling back as numbers: amounts of cost and damage,
+ * values, the policy, and how probable it is to come to each point. */
+#include "decide/branching_parts.h"
+
+#include <math.h>
+
+/* --- along a branch, from its end to its beginning --- */
+
+static struct graph *graph_in(const struct rolling *r)
+{
+    return r->worth.f->graph;
+}
+
+static node_id plus(const struct rolling *r, node_id x, node_id y)
+{
+    if (x == NODE_NONE || y == NODE_NONE)
+        return x == NODE_NONE ? y : x;
+    return graph_op2(graph_in(r), OP_ADD, x, y);
+}
+
+node_id branching_stated(struct rolling *r, const struct quantity *q)
+{
+    struct figures *f = r->worth.f;
+    const char *key = arena_printf(f->arena, "%p", (const void *)q);
+    node_id *known = strmap_get(&r->stated, key);
+    if (!known) {
+        known = NEW(f->arena, node_id);
+        *known = compile_quantity(&r->worth.b, q);
+        strmap_set(f->arena, &r->stated, key, known);
+    }
+    return *known;
+}
+
+/* Times closer than this are one, in years. */
+static const double SAME_INSTANT = 1e-9;
+
+static node_id payment(struct rolling *r, const struct move *m)
+{
+    struct payment p = {floor(m->at + SAME_INSTANT), branching_stated(r, m->paid)};
+    return cost_paid(&r->worth.money, &p);
+}
+
+static node_id sum_of(struct rolling *r, size_t n, const node_id *nodes)
+{
+    return n ? money_sum(&r->worth.money, n, nodes) : NODE_NONE;
+}
+
+/* What an option costs that is applied for the first time. */
+static node_id cost_first(struct rolling *r, const struct move *m)
+{
+    const struct money *money = &r->worth.money;
+    struct payments once = cost_once_later(money, m->what, m->at);
+    node_id *parts = NEW_ARRAY(r->worth.f->arena, once.n + 1, node_id);
+    size_t n = 0;
+    for (size_t i = 0; i < once.n; i++)
+        parts[n++] = cost_paid(money, &once.at[i]);
+    node_id running = cost_running_later(money, m->what, m->at, 0, money->horizon);
+    if (running != NODE_NONE)
+        parts[n++] = running;
+    return sum_of(r, n, parts);
+}
+
+/* Applied again: paid again; it runs on beyond the end of what it replaces, and only the new one is
+ * worth something at the end of the horizon. */
+static node_id cost_again(struct rolling *r, const struct move *m)
+{
+    const struct money *money = &r->worth.money;
+    struct graph *g = graph_in(r);
+    struct payments now = cost_once_later(money, m->what, m->at);
+    struct payments before = cost_once_later(money, m->what, m->before);
+    struct life old = life_later(r->worth.f, m->what, m->before);
+    node_id *parts = NEW_ARRAY(r->worth.f->arena, now.n + before.n + 1, node_id);
+    size_t n = 0;
+    for (size_t i = 0; i < now.n; i++)
+        parts[n++] = cost_paid(money, &now.at[i]);
+    for (size_t i = 0; i < before.n; i++)
+        if (before.at[i].year >= money->horizon)
+            parts[n++] = graph_op1(g, OP_NEGATE, cost_paid(money, &before.at[i]));
+    node_id running =
+        cost_running_later(money, m->what, m->at, fmax(life_end(&old), 0), money->horizon);
+    if (running != NODE_NONE)
+        parts[n++] = running;
+    return sum_of(r, n, parts);
+}
+
+static const char *move_key(struct rolling *r, const struct move *m, const struct measure *of,
+                            size_t hidden)
+{
+    return arena_printf(r->worth.f->arena, "%p %d %s %zu %.17g %.17g", (const void *)m->world,
+                        (int)of->property, of->of ? of->of : "", hidden, m->at, m->to);
+}
+
+/* A measure in one hidden state of a world, while it is the case. */
+static node_id measured(struct rolling *r, const struct move *m, const struct measure *of,
+                        size_t hidden)
+{
+    const char *key = move_key(r, m, of, hidden);
+    node_id *known = strmap_get(&r->measured, key);
+    if (!known) {
+        known = NEW(r->worth.f->arena, node_id);
+        *known = world_measure(&r->worth, &r->b->worlds, m->world, hidden, of, m->at, m->to);
+        strmap_set(r->worth.f->arena, &r->measured, key, known);
+    }
+    return *known;
+}
+
+/* The sum over states of a share times what is there. */
+static node_id mixed(struct rolling *r, const node_id *shares, const node_id *amounts)
+{
+    size_t n = r->b->worlds.hidden.n, k = 0;
+    node_id *terms = NEW_ARRAY(r->worth.f->arena, n, node_id);
+    for (size_t i = 0; i < n; i++)
+        if (amounts[i] != NODE_NONE)
+            terms[k++] = graph_op2(graph_in(r), OP_MULTIPLY, shares[i], amounts[i]);
+    if (k == 0)
+        return NODE_NONE;
+    return k == 1 ? terms[0] : graph_op(graph_in(r), OP_SUM, k, terms);
+}
+
+static void back_over_time(struct rolling *r, const struct move *m, const struct measure *of,
+                           struct by_state *x)
+{
+    size_t n = r->b->worlds.hidden.n;
+    node_id *before = NEW_ARRAY(r->worth.f->arena, n, node_id);
+    node_id *inside = NEW_ARRAY(r->worth.f->arena, n, node_id);
+    const struct passage *p = NULL;
+    for (size_t k = 0; k < n; k++)
+        inside[k] = of ? measured(r, m, of, k) : NODE_NONE;
+    if (m->world->flows.n)
+        world_passage(&r->b->worlds, m->world, m->to - m->at, &p, NULL); /* it is known */
+    for (size_t k = 0; k < n; k++) {
+        node_id then = p ? mixed(r, &p->to[k * n], x->at) : x->at[k];
+        node_id now = p ? mixed(r, &p->time[k * n], inside) : inside[k];
+        before[k] = plus(r, now, then);
+    }
+    x->at = before;
+}
+
+static void back_over(struct rolling *r, const struct move *m, const struct measure *of,
+                      struct by_state *x)
+{
+    size_t n = r->b->worlds.hidden.n;
+    node_id *before = NEW_ARRAY(r->worth.f->arena, n, node_id);
+    node_id paid = NODE_NONE;
+    if (m->kind == MOVE_TIME) {
+        back_over_time(r, m, of, x);
+        return;
+    }
+    if (m->kind == MOVE_PAY && !of)
+        paid = payment(r, m);
+    if (m->kind == MOVE_APPLY && !of)
+        paid = m->before < 0 ? cost_first(r, m) : cost_again(r, m);
+    for (size_t k = 0; k < n; k++)
+        before[k] = m->kind == MOVE_RESET ? x->at[m->map[k]] : plus(r, paid, x->at[k]);
+    x->at = before;
+}
+
+struct by_state branching_back(struct rolling *r, const struct branch *b, const struct measure *m,
+                               const struct by_state *end)
+{
+    size_t n = r->b->worlds.hidden.n;
+    struct by_state x = {NEW_ARRAY(r->worth.f->arena, n, node_id)};
+    for (size_t k = 0; k < n; k++)
+        x.at[k] = end ? end->at[k] : NODE_NONE;
+    for (size_t i = b->moves.n; i > 0; i--)
+        back_over(r, &b->moves.at[i - 1], m, &x);
+    return x;
+}
+
+/* --- amounts --- */
+
+struct amounts {
+    struct by_state cost, damage;
+};
+
+static const struct measure damage_of_all = {PROPERTY_RISK, NULL, {0}, {0}};
+
+static struct measure damage_measure_of_tree(void)
+{
+    struct measure m = damage_of_all;
+    m.dim = dim_money_rate;
+    m.sum = dim_money;
+    return m;
+}
+
+static double value_of(const struct figures *f, node_id n)
+{
+    return n == NODE_NONE ? 0 : means_value(f->means, n);
+}
+
+static double expected(const struct figures *f, const struct branch *b, size_t n,
+                       const struct amounts *x)
+{
+    double sum = 0;
+    for (size_t k = 0; k < n; k++)
+        if (b->belief[k] > 0)
+            sum += b->belief[k] * (value_of(f, x->cost.at[k]) + value_of(f, x->damage.at[k]));
+    return sum;
+}
+
+static void compile_amounts(struct rolling *r, struct branch *b, struct amounts *x)
+{
+    struct measure m = damage_measure_of_tree();
+    x->cost = branching_back(r, b, NULL, NULL);
+    x->damage = branching_back(r, b, &m, NULL);
+}
+
+size_t branching_count(const struct branching *b)
+{
+    size_t n = 0;
+    for (size_t i = 0; i < b->points.n; i++)
+        n += b->points.at[i].n;
+    return n;
+}
+
+static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
+{
+    struct branching *b = r->b;
+    struct figures *f = r->worth.f;
+    struct amounts *all = NEW_ARRAY(f->arena, branching_count(b) + 1, struct amounts);
+    size_t at = 0;
+    compiled_begin_part(f, b->weighing->alternatives.at[0].variant,
+                        model_find(f->base, b->weighing->id), b->weighing->id, "amounts",
+                        &r->worth.b);
+    money_begin(&r->worth.money, f, &r->worth.b, b->weighing->horizon);
+    for (size_t i = 0; i < b->points.n; i++)
+        for (size_t k = 0; k < b->points.at[i].n; k++)
+            compile_amounts(r, &b->points.at[i].branches[k], &all[at++]);
+    compile_amounts(r, b->nothing, &all[at]);
+    compiled_end(&r->worth.b);
+    ohmen_status status = figures_evaluate(f, e);
+    at = 0;
+    for (size_t i = 0; status == OHMEN_OK && i < b->points.n; i++)
+        for (size_t k = 0; k < b->points.at[i].n; k++) {
+            struct branch *x = &b->points.at[i].branches[k];
+            x->amount = expected(f, x, b->worlds.hidden.n, &all[at++]);
+        }
+    if (status == OHMEN_OK)
+        b->nothing->amount =
+            expected(f, b->nothing, b->worlds.hidden.n, &all[at]);
+    return status;
+}
+
+/* --- rolling back --- */
+
+/* Rolled back is what is worth: cost and damage are negative. */
+static void add_point(const struct branching *b, struct rollback_builder *to, struct arena *a,
+                      size_t i, size_t first)
+{
+    const struct point *p = &b->points.at[i];
+    size_t *child = NEW_ARRAY(a, p->n, size_t);
+    double *probability = NEW_ARRAY(a, p->n, double);
+    bool chance = p->kind != POINT_CHOOSE && p->kind != POINT_END;
+    for (size_t k = 0; k < p->n; k++) {
+        child[k] = first + k;
+        probability[k] = p->branches[k].probability;
+    }
+    enum rollback_kind kind = p->kind == POINT_END      ? ROLLBACK_END
+                              : p->kind == POINT_CHOOSE ? ROLLBACK_CHOOSE
+                                                        : ROLLBACK_CHANCE;
+    rollback_add(to, kind, 0, (uint32_t)p->n, child, chance ? probability : NULL);
+}
+
+static void lay_out(struct branching *b, struct arena *a)
+{
+    struct rollback_builder *to = rollback_new(a);
+    size_t first = b->points.n;
+    for (size_t i = 0; i < b->points.n; i++) {
+        add_point(b, to, a, i, first);
+        first += b->points.at[i].n;
+    }
+    for (size_t i = 0; i < b->points.n; i++)
+        for (size_t k = 0; k < b->points.at[i].n; k++) {
+            const struct branch *x = &b->points.at[i].branches[k];
+            rollback_add(to, ROLLBACK_STEP, -x->amount, 1, &x->to, NULL);
+        }
+    b->laid_out = rollback_lay_out(to, 0, &first);
+}
+
+size_t branching_number(const struct branching *b, size_t point, size_t branch)
+{
+    size_t n = b->points.n;
+    for (size_t i = 0; i < point; i++)
+        n += b->points.at[i].n;
+    return n + branch;
+}
+
+static void read_results(struct branching *b, const double *value, const uint32_t *chosen,
+                         const double *reach)
+{
+    const size_t *place = b->laid_out->place;
+    size_t at = b->points.n;
+    for (size_t i = 0; i < b->points.n; i++) {
+        struct point *p = &b->points.at[i];
+        bool reached = place[i] != ROLLBACK_NOWHERE; /* the end of doing nothing may not be */
+        p->value = reached ? 0 - value[place[i]] : 0;
+        p->reach = reached ? reach[place[i]] : 0;
+        p->best = reached && p->kind == POINT_CHOOSE ? chosen[place[i]] : 0;
+        for (size_t k = 0; k < p->n; k++, at++) {
+            struct branch *x = &p->branches[k];
+            x->value = place[at] == ROLLBACK_NOWHERE ? 0 : 0 - value[place[at]];
+            x->reach = p->reach * (p->kind != POINT_CHOOSE ? x->probability : p->best == k);
+        }
+    }
+}
+
+ohmen_status branching_roll_back(struct branching *b, struct figures *f, ohmen_error *e)
+{
+    struct rolling r = {.b = b};
+    r.worth = (struct worth){.f = f, .w = b->weighing};
+    ohmen_status status = find_amounts(&r, e);
+    if (status != OHMEN_OK)
+        return status;
+    lay_out(b, f->arena);
+    double *value = NEW_ARRAY(f->arena, b->laid_out->n, double);
+    double *reach = NEW_ARRAY(f->arena, b->laid_out->n, double);
+    uint32_t *chosen = NEW_ARRAY(f->arena, b->laid_out->n, uint32_t);
+    rollback_values(b->laid_out, isa_best(), value);
+    rollback_policy(b->laid_out, isa_best(), value, chosen);
+    rollback_reach(b->laid_out, chosen, reach);
+    read_results(b, value, chosen, reach);
+    b->nothing->value = b->nothing->amount;
+    return OHMEN_OK;
+}
