@@ -3,6 +3,8 @@
  * states are in it, its alternatives; then growing, rolling back and figures, each in its file. */
 #include "decide/branching_parts.h"
 
+#include <stdlib.h>
+
 #include "decide/alternatives.h"
 #include "decide/worth.h"
 #include "figure/states.h"
@@ -255,7 +257,7 @@ static void find_alternatives(struct figures *f, struct branching *b)
     if (b->repeats)
         add_alternative(f, w, "policy");
     for (size_t k = 0; k < p->n; k++) {
-        const struct branch *x = &p->branches[k];
+        const struct way *x = &p->branches[k];
         bool nothing = !b->repeats && !*x->steps && b->points.at[x->to].kind == POINT_END;
         bool everywhere = true;
         for (size_t i = 0; root->kind == POINT_SEE && i < root->n; i++) {

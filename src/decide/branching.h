@@ -54,7 +54,7 @@ struct move {
     const size_t *map;           /* MOVE_RESET: the hidden state that each becomes */
 };
 
-struct branch {
+struct way {
     const char *label; /* as in the document; a reading; a state: "renew", "poor", "aged" */
     const char *path;  /* "survey-first/poor/renew" */
     const char *steps; /* in words; "" for none */
@@ -77,7 +77,7 @@ struct point {
     struct path done; /* what was applied and changed so far */
     const double *belief;
     size_t n;
-    struct branch *branches;
+    struct way *branches;
     size_t best;       /* POINT_CHOOSE: the branch to take */
     bool is_stage;     /* a choice that comes again */
     const char *state; /* of a stage: what is seen or believed, and what is in service; else NULL */
@@ -103,7 +103,7 @@ struct branching {
     size_t n_stages;
     const char **stages; /* "2031" */
     double every;
-    struct branch *nothing; /* to the end of the horizon as it is */
+    struct way *nothing; /* to the end of the horizon as it is */
     ARRAY(struct survey_worth) surveys;
     const struct rollback *laid_out; /* points, then their branches in order, then nothing */
 };

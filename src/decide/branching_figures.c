@@ -56,7 +56,7 @@ static node_id sum(struct telling *t, size_t n, const node_id *nodes)
 
 static const struct by_state *behind_point(struct telling *t, struct alphas *x, size_t point);
 
-static struct by_state behind_branch(struct telling *t, struct alphas *x, const struct branch *b)
+static struct by_state behind_branch(struct telling *t, struct alphas *x, const struct way *b)
 {
     return branching_back(&t->r, b, x->of, behind_point(t, x, b->to));
 }
@@ -79,7 +79,7 @@ static node_id share_node(struct telling *t, const struct point *p, size_t k)
 /* The weight of branch k of a point in a hidden state. */
 static node_id weight(struct telling *t, const struct point *p, size_t k, size_t hidden)
 {
-    const struct branch *b = &p->branches[k];
+    const struct way *b = &p->branches[k];
     return b->likelihood ? number(t, b->likelihood[hidden]) : share_node(t, p, k);
 }
 
@@ -89,7 +89,7 @@ static node_id mixed(struct telling *t, const struct point *p, const struct by_s
     node_id *terms = NEW_ARRAY(t->f->arena, p->n, node_id);
     size_t n = 0;
     for (size_t k = 0; k < p->n; k++) {
-        const struct branch *b = &p->branches[k];
+        const struct way *b = &p->branches[k];
         bool never = b->likelihood && b->likelihood[hidden] == 0;
         bool always = b->likelihood && b->likelihood[hidden] == 1;
         if (never || branches[k].at[hidden] == NODE_NONE)
@@ -131,7 +131,7 @@ static struct alphas alphas_of(struct telling *t, const struct measure *m)
 /* --- what is believed --- */
 
 /* Beliefs behind the moves of a branch. */
-static node_id *move_on(struct telling *t, const struct branch *b, node_id *belief)
+static node_id *move_on(struct telling *t, const struct way *b, node_id *belief)
 {
     size_t n = hidden_in(t);
     for (size_t i = 0; i < b->moves.n; i++) {
@@ -159,7 +159,7 @@ static node_id *move_on(struct telling *t, const struct branch *b, node_id *beli
 }
 
 /* Bayes' rule: what is believed at the beginning of a branch; its probability in *probability. */
-static node_id *told(struct telling *t, const struct point *p, const struct branch *b,
+static node_id *told(struct telling *t, const struct point *p, const struct way *b,
                      node_id *belief, node_id *probability)
 {
     size_t n = hidden_in(t), count = 0;
@@ -225,7 +225,7 @@ static void add_beliefs(struct telling *t, const char *path, const node_id *beli
 static void tell_branch(struct telling *t, size_t point, size_t k)
 {
     struct point *p = &t->b->points.at[point];
-    struct branch *b = &p->branches[k];
+    struct way *b = &p->branches[k];
     node_id probability = NODE_NONE, *belief = t->belief[point];
     if (b->likelihood)
         belief = told(t, p, b, belief, &probability);
@@ -291,7 +291,7 @@ static void tell_points(struct telling *t)
 /* --- alternatives --- */
 
 /* The branch of a point with this label, or NULL. */
-static const struct branch *labelled(const struct point *p, const char *label)
+static const struct way *labelled(const struct point *p, const char *label)
 {
     for (size_t k = 0; k < p->n; k++)
         if (text_equal(p->branches[k].label, label))
@@ -323,7 +323,7 @@ static struct by_state behind_alternative(struct telling *t, struct alphas *x,
         return *behind_point(t, x, 0);
     for (size_t h = 0; h < n; h++) {
         const struct point *p = first_choice(t->b, h);
-        const struct branch *b = p ? labelled(p, alt->name) : NULL;
+        const struct way *b = p ? labelled(p, alt->name) : NULL;
         all.at[h] = b ? behind_branch(t, x, b).at[h] : NODE_NONE;
     }
     return all;
@@ -427,7 +427,7 @@ static double total_of(const struct branching *b, size_t i)
 {
     if (i == 0)
         return b->nothing->value;
-    const struct branch *begins = labelled(&b->points.at[0], b->weighing->alternatives.at[i].name);
+    const struct way *begins = labelled(&b->points.at[0], b->weighing->alternatives.at[i].name);
     return begins ? begins->value : b->points.at[0].value;
 }
 
@@ -441,9 +441,9 @@ static size_t best_but(const struct branching *b, size_t but)
 }
 
 /* What is paid on the branch before its reading. */
-static node_id price_of(struct telling *t, const struct branch *b)
+static node_id price_of(struct telling *t, const struct way *b)
 {
-    struct branch only = *b;
+    struct way only = *b;
     only.moves.at = NEW_ARRAY(t->f->arena, b->moves.n, struct move);
     only.moves.n = 0;
     for (size_t i = 0; i < b->moves.n; i++)
@@ -457,7 +457,7 @@ static void add_survey(struct telling *t, size_t i)
 {
     struct weighing *w = t->b->weighing;
     const struct alternative *alt = &w->alternatives.at[i];
-    const struct branch *b = labelled(&t->b->points.at[0], alt->name);
+    const struct way *b = labelled(&t->b->points.at[0], alt->name);
     if (!b || t->b->repeats || t->b->points.at[b->to].kind != POINT_READ)
         return;
     struct graph *g = graph_of(t);

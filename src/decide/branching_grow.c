@@ -120,7 +120,7 @@ static const char *point_key(struct growing *g, const void *place, const struct 
 
 /* --- time --- */
 
-static struct move *add_move(struct growing *g, struct branch *b, enum move_kind kind, double at)
+static struct move *add_move(struct growing *g, struct way *b, enum move_kind kind, double at)
 {
     struct move *m = array_push(g->f->arena, &b->moves);
     *m = (struct move){.kind = kind, .at = at, .to = at};
@@ -128,7 +128,7 @@ static struct move *add_move(struct growing *g, struct branch *b, enum move_kind
 }
 
 /* The option sets states: what is believed moves there. */
-static void reset_states(struct growing *g, struct branch *b, struct standing *s,
+static void reset_states(struct growing *g, struct way *b, struct standing *s,
                          const char *option)
 {
     const struct hidden *h = &g->b->worlds.hidden;
@@ -156,7 +156,7 @@ static void reset_states(struct growing *g, struct branch *b, struct standing *s
 }
 
 /* Options that begin, or are renewed, behind `from` and until `to`. */
-static void reset_between(struct growing *g, struct branch *b, struct standing *s, double from,
+static void reset_between(struct growing *g, struct way *b, struct standing *s, double from,
                           double to)
 {
     for (size_t i = 0; i < s->done.applied.n; i++) {
@@ -201,7 +201,7 @@ static ohmen_status move_beliefs(struct growing *g, struct world *w, struct stan
 
 /* One stretch with the same variant and without resets inside; by whole years where states change,
  * so that each year has its own damage. */
-static ohmen_status pass_stretch(struct growing *g, struct branch *b, struct standing *s,
+static ohmen_status pass_stretch(struct growing *g, struct way *b, struct standing *s,
                                  const struct variant *v, double to, ohmen_error *e)
 {
     struct world *w;
@@ -239,7 +239,7 @@ static ohmen_status stretches_of(struct growing *g, const struct standing *s,
 }
 
 /* Lets time pass. */
-static ohmen_status pass(struct growing *g, struct branch *b, struct standing *s, double to,
+static ohmen_status pass(struct growing *g, struct way *b, struct standing *s, double to,
                          ohmen_error *e)
 {
     const struct stretches *cut;
@@ -271,7 +271,7 @@ static const char *quantity_words(struct growing *g, const struct quantity *q)
 }
 
 /* An option that is applied again replaces what it brought before. */
-static ohmen_status apply(struct growing *g, struct branch *b, struct standing *s,
+static ohmen_status apply(struct growing *g, struct way *b, struct standing *s,
                           const char *option, ohmen_error *e)
 {
     const struct applied *before = applied_in(&s->done, option);
@@ -311,7 +311,7 @@ static const struct reading_test *test_of(struct growing *g, const char *inspect
     return NULL;
 }
 
-static void pay_for_test(struct growing *g, struct branch *b, const struct standing *s,
+static void pay_for_test(struct growing *g, struct way *b, const struct standing *s,
                          const char *inspect)
 {
     size_t state;
@@ -325,11 +325,11 @@ static void pay_for_test(struct growing *g, struct branch *b, const struct stand
 }
 
 static ohmen_status grow_point(struct growing *g, enum point_kind kind, const struct step *step,
-                               const struct standing *at, struct branch *by, ohmen_error *e);
+                               const struct standing *at, struct way *by, ohmen_error *e);
 static ohmen_status grow_stage(struct growing *g, const struct standing *at, size_t *out,
                                ohmen_error *e);
 
-static ohmen_status end_of_branch(struct growing *g, struct branch *b, struct standing *s,
+static ohmen_status end_of_branch(struct growing *g, struct way *b, struct standing *s,
                                   ohmen_error *e)
 {
     const struct decision *d = g->b->weighing->decision;
@@ -355,7 +355,7 @@ static const struct list *subtree_of(const struct decision *d, const char *name)
 }
 
 /* One step that is not the last one of its branch. */
-static ohmen_status take_step(struct growing *g, struct branch *b, struct standing *s,
+static ohmen_status take_step(struct growing *g, struct way *b, struct standing *s,
                               const struct step *step, struct text *words, ohmen_error *e)
 {
     if (step->pay) {
@@ -386,7 +386,7 @@ static ohmen_status take_step(struct growing *g, struct branch *b, struct standi
 }
 
 /* Follows steps to the next point or the end. */
-static ohmen_status follow(struct growing *g, struct branch *b, struct standing *s,
+static ohmen_status follow(struct growing *g, struct way *b, struct standing *s,
                            const struct list *steps, struct text *words, ohmen_error *e)
 {
     for (size_t i = 0; i < steps->n; i++) {
@@ -409,7 +409,7 @@ static ohmen_status follow(struct growing *g, struct branch *b, struct standing 
     return end_of_branch(g, b, s, e);
 }
 
-static ohmen_status grow_branch(struct growing *g, const struct point *from, struct branch *b,
+static ohmen_status grow_branch(struct growing *g, const struct point *from, struct way *b,
                                 const struct list *steps, ohmen_error *e)
 {
     struct text words;
@@ -426,11 +426,11 @@ static ohmen_status grow_branch(struct growing *g, const struct point *from, str
 
 /* --- points --- */
 
-static struct branch *add_branch(struct growing *g, struct point *p, const char *label,
+static struct way *add_branch(struct growing *g, struct point *p, const char *label,
                                  const double *belief, double probability)
 {
-    struct branch *b = &p->branches[p->n++];
-    *b = (struct branch){.label = label, .belief = belief, .probability = probability};
+    struct way *b = &p->branches[p->n++];
+    *b = (struct way){.label = label, .belief = belief, .probability = probability};
     b->path = join_path(g, p->path, label);
     return b;
 }
@@ -485,7 +485,7 @@ static void add_readings(struct growing *g, struct point *p, const struct step *
     const char *name;
     const struct reading_test *t = test_of(g, step->inspect, &state, &name);
     p->test = step->inspect;
-    p->branches = NEW_ARRAY(g->f->arena, t->reads.n, struct branch);
+    p->branches = NEW_ARRAY(g->f->arena, t->reads.n, struct way);
     for (size_t r = 0; r < t->reads.n; r++)
         add_told(g, p, t->reads.at[r], likelihood_of(g, t, state, r));
 }
@@ -496,10 +496,10 @@ static ohmen_status add_chances(struct growing *g, struct point *p, const struct
     double left = 1;
     size_t rest = step->chance.n;
     ohmen_status status = OHMEN_OK;
-    p->branches = NEW_ARRAY(g->f->arena, step->chance.n, struct branch);
+    p->branches = NEW_ARRAY(g->f->arena, step->chance.n, struct way);
     for (size_t i = 0; status == OHMEN_OK && i < step->chance.n; i++) {
         const struct fork *fork = ROW(struct fork, step->chance, i);
-        struct branch *b = add_branch(g, p, step->chance.keys[i], p->belief, 0);
+        struct way *b = add_branch(g, p, step->chance.keys[i], p->belief, 0);
         bool is_rest = fork->p->shape == SHAPE_EXPRESSION && !fork->p->expr;
         b->share = is_rest ? NULL : fork->p;
         if (is_rest)
@@ -515,7 +515,7 @@ static ohmen_status add_chances(struct growing *g, struct point *p, const struct
 
 static void add_choices(struct growing *g, struct point *p, const struct rows *rows)
 {
-    p->branches = NEW_ARRAY(g->f->arena, rows->n, struct branch);
+    p->branches = NEW_ARRAY(g->f->arena, rows->n, struct way);
     for (size_t i = 0; i < rows->n; i++)
         add_branch(g, p, rows->keys[i], p->belief, 1);
 }
@@ -557,7 +557,7 @@ static void close_point(struct growing *g, size_t at)
 }
 
 static ohmen_status grow_point(struct growing *g, enum point_kind kind, const struct step *step,
-                               const struct standing *at, struct branch *by, ohmen_error *e)
+                               const struct standing *at, struct way *by, ohmen_error *e)
 {
     bool known;
     struct standing s = *at;
@@ -621,7 +621,7 @@ static bool sees_alike(const struct growing *g, size_t p, size_t q)
 static void add_sights(struct growing *g, struct point *p)
 {
     size_t n = hidden_count(g);
-    p->branches = NEW_ARRAY(g->f->arena, n, struct branch);
+    p->branches = NEW_ARRAY(g->f->arena, n, struct way);
     for (size_t k = 0; k < n; k++) {
         bool first = true;
         double *likelihood = NEW_ARRAY(g->f->arena, n, double);
@@ -725,7 +725,7 @@ static bool is_possible(struct growing *g, const struct standing *s, const struc
 static void add_possible(struct growing *g, struct point *p, const struct standing *s)
 {
     const struct rows *rows = &g->b->weighing->decision->choose;
-    p->branches = NEW_ARRAY(g->f->arena, rows->n, struct branch);
+    p->branches = NEW_ARRAY(g->f->arena, rows->n, struct way);
     for (size_t i = 0; i < rows->n; i++)
         if (is_possible(g, s, &((const struct list *)rows->at)[i]))
             add_branch(g, p, rows->keys[i], p->belief, 1);
@@ -798,7 +798,7 @@ static ohmen_status grow_sight(struct growing *g, const struct standing *at, siz
     p.path = own_path(g, g->b->stages[stage_at(g, at->time)], state_words(g, at, ""));
     add_sights(g, &p);
     for (size_t i = 0; status == OHMEN_OK && i < p.n; i++) {
-        struct branch *b = &p.branches[i];
+        struct way *b = &p.branches[i];
         struct standing s = *at;
         s.belief = b->belief;
         b->path = join_path(g, p.path, b->label);
@@ -825,9 +825,9 @@ static ohmen_status grow_stage(struct growing *g, const struct standing *at, siz
 static ohmen_status grow_nothing(struct growing *g, ohmen_error *e)
 {
     const struct point *root = &g->b->points.at[0];
-    struct branch *b = NEW(g->f->arena, struct branch);
+    struct way *b = NEW(g->f->arena, struct way);
     struct standing s = {0, {{0}, {0}}, root->belief, "do-nothing"};
-    *b = (struct branch){.label = "do-nothing", .path = "do-nothing", .steps = "",
+    *b = (struct way){.label = "do-nothing", .path = "do-nothing", .steps = "",
                          .belief = root->belief, .probability = 1};
     b->value_figure = b->probability_figure = b->reach_figure = FIGURE_NONE;
     g->b->nothing = b;
@@ -855,9 +855,9 @@ static ohmen_status name_stages(struct growing *g, ohmen_error *e)
         char text[DATE_TEXT];
         double t = (double)i * b->every;
         bool whole = b->every == floor(b->every);
-        day day = day_years_behind(horizon_start(g->f->base->settings), t);
+        day first = day_years_behind(horizon_start(g->f->base->settings), t);
         b->stages[i] = whole ? horizon_label(g->f->arena, g->f->base->settings, (uint32_t)t)
-                             : arena_str(g->f->arena, date_write(text, day));
+                             : arena_str(g->f->arena, date_write(text, first));
     }
     return OHMEN_OK;
 }
@@ -866,7 +866,7 @@ ohmen_status branching_grow(struct growing *g, ohmen_error *e)
 {
     const struct decision *d = g->b->weighing->decision;
     struct step *root = NEW(g->f->arena, struct step);
-    struct branch by = {.path = ""};
+    struct way by = {.path = ""};
     struct standing s = {0, {{0}, {0}}, g->b->worlds.hidden.start, ""};
     ohmen_status status = name_stages(g, e);
     root->choose = d->choose;

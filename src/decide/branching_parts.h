@@ -48,7 +48,7 @@ node_id branching_stated(struct rolling *r, const struct quantity *q);
 /* What comes to pass from the beginning of a branch on, if `end` (NULL: nothing) comes behind it:
  * the cost where m is NULL, else the measure. Only of hidden states that are possible at its
  * beginning. */
-struct by_state branching_back(struct rolling *r, const struct branch *b, const struct measure *m,
+struct by_state branching_back(struct rolling *r, const struct way *b, const struct measure *m,
                                const struct by_state *end);
 
 /* Values, policy, reach, as numbers; then figures of all of it, and the alternatives. */

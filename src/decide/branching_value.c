@@ -5,6 +5,8 @@
 
 #include <math.h>
 
+#include "figure/service.h"
+
 /* --- along a branch, from its end to its beginning --- */
 
 static struct graph *graph_in(const struct rolling *r)
@@ -156,7 +158,7 @@ static void back_over(struct rolling *r, const struct move *m, const struct meas
     x->at = before;
 }
 
-struct by_state branching_back(struct rolling *r, const struct branch *b, const struct measure *m,
+struct by_state branching_back(struct rolling *r, const struct way *b, const struct measure *m,
                                const struct by_state *end)
 {
     size_t n = r->b->worlds.hidden.n;
@@ -189,7 +191,7 @@ static double value_of(const struct figures *f, node_id n)
     return n == NODE_NONE ? 0 : means_value(f->means, n);
 }
 
-static double expected(const struct figures *f, const struct branch *b, size_t n,
+static double expected(const struct figures *f, const struct way *b, size_t n,
                        const struct amounts *x)
 {
     double sum = 0;
@@ -199,7 +201,7 @@ static double expected(const struct figures *f, const struct branch *b, size_t n
     return sum;
 }
 
-static void compile_amounts(struct rolling *r, struct branch *b, struct amounts *x)
+static void compile_amounts(struct rolling *r, struct way *b, struct amounts *x)
 {
     struct measure m = damage_measure_of_tree();
     x->cost = branching_back(r, b, NULL, NULL);
@@ -233,7 +235,7 @@ static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
     at = 0;
     for (size_t i = 0; status == OHMEN_OK && i < b->points.n; i++)
         for (size_t k = 0; k < b->points.at[i].n; k++) {
-            struct branch *x = &b->points.at[i].branches[k];
+            struct way *x = &b->points.at[i].branches[k];
             x->amount = expected(f, x, b->worlds.hidden.n, &all[at++]);
         }
     if (status == OHMEN_OK)
@@ -272,7 +274,7 @@ static void lay_out(struct branching *b, struct arena *a)
     }
     for (size_t i = 0; i < b->points.n; i++)
         for (size_t k = 0; k < b->points.at[i].n; k++) {
-            const struct branch *x = &b->points.at[i].branches[k];
+            const struct way *x = &b->points.at[i].branches[k];
             rollback_add(to, ROLLBACK_STEP, -x->amount, 1, &x->to, NULL);
         }
     b->laid_out = rollback_lay_out(to, 0, &first);
@@ -298,7 +300,7 @@ static void read_results(struct branching *b, const double *value, const uint32_
         p->reach = reached ? reach[place[i]] : 0;
         p->best = reached && p->kind == POINT_CHOOSE ? chosen[place[i]] : 0;
         for (size_t k = 0; k < p->n; k++, at++) {
-            struct branch *x = &p->branches[k];
+            struct way *x = &p->branches[k];
             x->value = place[at] == ROLLBACK_NOWHERE ? 0 : 0 - value[place[at]];
             x->reach = p->reach * (p->kind != POINT_CHOOSE ? x->probability : p->best == k);
         }

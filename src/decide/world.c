@@ -3,7 +3,9 @@
  * figures. */
 #include "decide/world.h"
 
+#include "figure/consequences.h"
 #include "figure/states.h"
+#include "/tmp/chain_stub.h"
 
 /* --- hidden states --- */
 

@@ -59,6 +59,9 @@ void check_states(struct arena *a, const struct model *base, const struct model 
                   const char *option, struct diags *d);
 
 bool check_has_row(const struct rows *rows, const char *key);
+/* There is such a row; `what` it would be. */
+void check_named(struct checking *c, const struct rows *rows, const char *key, struct place at,
+               const char *what);
 
 /* The place of a node of this object (its own, or the register with its path). */
 struct place check_place(const struct object *o, const struct node *node);

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* States and decisions: names that refer inside an object, probabilities that sum to 1. */
+/* States and options: names that refer inside an object, probabilities that sum to 1. Decisions:
+ * check_tree.c. */
 #include "model/check.h"
 
 #include <math.h>
@@ -13,7 +14,7 @@ bool check_has_row(const struct rows *rows, const char *key)
     return false;
 }
 
-static void expect_row(struct checking *c, const struct rows *rows, const char *key,
+void check_named(struct checking *c, const struct rows *rows, const char *key,
                        struct place at, const char *what)
 {
     if (check_has_row(rows, key))
@@ -35,7 +36,7 @@ static const struct quantity *plain_share(const struct rows *rows, size_t i)
 static void expect_keys(struct checking *c, const struct rows *states, const struct node *map)
 {
     for (size_t i = 0; map && i < map->n; i++)
-        expect_row(c, states, map->pairs[i].key, map->pairs[i].place, "state");
+        check_named(c, states, map->pairs[i].key, map->pairs[i].place, "state");
 }
 
 /* One probability for each reading, summing to 1. */
@@ -120,8 +121,8 @@ static void check_failures(struct checking *c, const struct state *s, const stru
         const struct rows *to = &((const struct rows *)s->failures.at)[i];
         for (size_t k = 0; h && k < to->n; k++) {
             const struct pair *row = &failures->pairs[i].value->pairs[k];
-            expect_row(c, &h->outcomes, to->keys[k], row->place, "outcome");
-            expect_row(c, state_values(s), ((const char *const *)to->at)[k], row->value->place,
+            check_named(c, &h->outcomes, to->keys[k], row->place, "outcome");
+            check_named(c, state_values(s), ((const char *const *)to->at)[k], row->value->place,
                        "state");
         }
     }
@@ -158,7 +159,7 @@ void check_state(struct checking *c, const struct object *o)
     check_failures(c, s, node_get(o->node, "failures"));
     const struct node *renewed = node_get(o->node, "renewed-by");
     for (size_t i = 0; i < s->renewed_by.n; i++)
-        expect_row(c, states, ((const char *const *)s->renewed_by.at)[i],
+        check_named(c, states, ((const char *const *)s->renewed_by.at)[i],
                    renewed->pairs[i].value->place, "state");
     const struct node *tests = node_get(o->node, "tests");
     for (size_t i = 0; i < s->tests.n; i++)
@@ -206,158 +207,4 @@ void check_combinations(struct checking *c, const struct object *o)
                      "these differ",
                      o->id, row->key);
     }
-}
-
-/* --- decisions --- */
-
-struct tree_check {
-    struct checking *c;
-    const struct decision *decision;
-};
-
-static void check_steps(struct tree_check *t, const struct list *steps, const struct node *node);
-
-static void check_alternatives(struct tree_check *t, const struct rows *rows,
-                               const struct node *node)
-{
-    for (size_t i = 0; i < rows->n; i++)
-        check_steps(t, &((const struct list *)rows->at)[i], node->pairs[i].value);
-}
-
-static const struct quantity *share_of_fork(const struct rows *rows, size_t i)
-{
-    return ROW(struct fork, *rows, i)->p;
-}
-
-static void check_chance(struct tree_check *t, const struct rows *forks, const struct node *node)
-{
-    check_shares(t->c, node, forks, share_of_fork, "probabilities of these branches");
-    for (size_t i = 0; i < forks->n; i++) {
-        const struct node *then = node_get(node->pairs[i].value, "then");
-        if (then)
-            check_steps(t, &ROW(struct fork, *forks, i)->then, then);
-    }
-}
-
-/* "STATE.TEST": both exist, and each reading has its branch. */
-static void check_inspect(struct tree_check *t, const struct step *s, const struct node *node)
-{
-    struct place at = node_get(node, "inspect")->place;
-    const char *dot = strchr(s->inspect, '.');
-    if (!dot) {
-        diag_add(t->c->diags, at,
-                 "expected the state and its test, such as T2-WINDING.OIL, found \"%s\"",
-                 s->inspect);
-        return;
-    }
-    const char *id = arena_strn(t->c->arena, s->inspect, (size_t)(dot - s->inspect));
-    const struct state *state = model_get(t->c->model, KIND_STATE, id);
-    if (!state) {
-        diag_add(t->c->diags, at, "there is no state \"%s\"", id);
-        return;
-    }
-    expect_row(t->c, &state->tests, dot + 1, at, "test of this state");
-    for (size_t i = 0; i < state->tests.n; i++) {
-        const struct reading_test *test = ROW(struct reading_test, state->tests, i);
-        if (!text_equal(state->tests.keys[i], dot + 1))
-            continue;
-        for (size_t r = 0; r < test->reads.n; r++)
-            if (!check_has_row(&s->reads, test->reads.at[r]))
-                diag_add(t->c->diags, node->place, "the reading \"%s\" has no branch",
-                         test->reads.at[r]);
-    }
-}
-
-static void check_step(struct tree_check *t, const struct step *s, const struct node *node,
-                       bool last)
-{
-    bool ends = s->choose.n || s->chance.n || s->inspect || s->go;
-    if (ends && !last)
-        diag_add(t->c->diags, node->place,
-                 "a choice, a chance or an inspection is the last step of a branch");
-    if (s->reads.n && !s->inspect)
-        diag_add(t->c->diags, node_get(node, "reads")->place, "\"reads\" belongs to \"inspect\"");
-    if (s->go && !check_has_row(&t->decision->subtrees, s->go))
-        expect_row(t->c, &t->decision->subtrees, s->go, node_get(node, "go")->place, "subtree");
-    if (s->inspect)
-        check_inspect(t, s, node);
-    check_alternatives(t, &s->reads, node_get(node, "reads"));
-    check_alternatives(t, &s->choose, node_get(node, "choose"));
-    if (s->chance.n)
-        check_chance(t, &s->chance, node_get(node, "chance"));
-}
-
-static void check_steps(struct tree_check *t, const struct list *steps, const struct node *node)
-{
-    for (size_t i = 0; i < steps->n; i++)
-        check_step(t, ((struct step *const *)steps->at)[i], node->items[i], i + 1 == steps->n);
-}
-
-/* Subtrees in one decision; each is visited once, one level of recursion a subtree. */
-#define SUBTREES 200
-
-enum { UNSEEN, OPEN, DONE };
-
-static bool contains_itself(const struct decision *d, size_t k, char *state);
-
-static size_t subtree_named(const struct decision *d, const char *name)
-{
-    size_t k = 0;
-    while (k < d->subtrees.n && !text_equal(d->subtrees.keys[k], name))
-        k++;
-    return k;
-}
-
-static bool steps_lead_back(const struct decision *d, const struct list *steps, char *state)
-{
-    bool back = false;
-    for (size_t i = 0; i < steps->n; i++) {
-        const struct step *s = ((struct step *const *)steps->at)[i];
-        size_t k = s->go ? subtree_named(d, s->go) : d->subtrees.n;
-        back = back || (k < d->subtrees.n && contains_itself(d, k, state));
-        for (size_t j = 0; j < s->reads.n; j++)
-            back = back || steps_lead_back(d, &((const struct list *)s->reads.at)[j], state);
-        for (size_t j = 0; j < s->choose.n; j++)
-            back = back || steps_lead_back(d, &((const struct list *)s->choose.at)[j], state);
-        for (size_t j = 0; j < s->chance.n; j++)
-            back = back || steps_lead_back(d, &ROW(struct fork, s->chance, j)->then, state);
-    }
-    return back;
-}
-
-/* Depth-first over subtrees: meeting an open one again closes a circle. */
-static bool contains_itself(const struct decision *d, size_t k, char *state)
-{
-    if (state[k] != UNSEEN)
-        return state[k] == OPEN;
-    state[k] = OPEN;
-    bool back = steps_lead_back(d, &((const struct list *)d->subtrees.at)[k], state);
-    state[k] = DONE;
-    return back;
-}
-
-static void check_subtrees(struct tree_check *t, const struct node *node)
-{
-    const struct decision *d = t->decision;
-    if (d->subtrees.n > SUBTREES) {
-        diag_add(t->c->diags, node->place, "a decision may have %d subtrees, found %zu", SUBTREES,
-                 d->subtrees.n);
-        return;
-    }
-    check_alternatives(t, &d->subtrees, node);
-    char *state = arena_alloc(t->c->arena, d->subtrees.n);
-    for (size_t k = 0; k < d->subtrees.n; k++)
-        if (contains_itself(d, k, state)) {
-            diag_add(t->c->diags, node->pairs[k].place, "the subtree \"%s\" contains itself",
-                     d->subtrees.keys[k]);
-            return;
-        }
-}
-
-void check_decision(struct checking *c, const struct object *o)
-{
-    const struct decision *d = o->data;
-    struct tree_check t = {c, d};
-    check_alternatives(&t, &d->choose, node_get(o->node, "choose"));
-    check_subtrees(&t, node_get(o->node, "subtrees"));
 }

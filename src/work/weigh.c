@@ -304,6 +304,10 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     report_heading(j->report, 1, arena_printf(j->arena, "%s: %s", w->id, w->decision->question));
+    if (w->branching) {
+        part_branching(j, w);
+        return OHMEN_OK;
+    }
     part_weighing(j, w);
     part_turn(j, w);
     part_weighing_grid(j, w);

@@ -156,6 +156,7 @@ void part_gaps_counted(struct job *j);
 /* All of a weighing that `weigh` and the report print, without the grid; and its parts. They rank
  * it where that has not been done (weigh_rank) only in part_weighing and part_weighing_grid. */
 void part_weighing(struct job *j, struct weighing *w);
+void part_branching(struct job *j, struct weighing *w);
 void part_alternatives(struct job *j, const struct weighing *w);
 void part_options(struct job *j, const struct weighing *w);
 void part_weighed_hazards(struct job *j, const struct weighing *w);

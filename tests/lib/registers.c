@@ -315,7 +315,8 @@ static void add_settings(struct generator *g)
     struct node *counts = make_list(g), *company = make_list(g), *society = make_list(g);
     put_text(g, m, "currency", "EUR");
     put_text(g, m, "prices", "2026");
-    put_text(g, m, "horizon", arena_printf(g->arena, "%u a", random_draw(g, 1, 40)));
+    g->years = random_draw(g, 1, 40);
+    put_text(g, m, "horizon", arena_printf(g->arena, "%u a", g->years));
     put_text(g, m, "discount", arena_printf(g->arena, "%s %% per a", random_number(g, 0.5, 9)));
     if (random_chance(g, 2))
         put_text(g, m, "start", random_chance(g, 2) ? "2027" : "2027-07-01");

@@ -276,20 +276,37 @@ static struct node *survey(struct generator *g)
     return m;
 }
 
+/* Behind each outcome of the hazard the asset is sound. */
+static void put_failures(struct generator *g, struct node *state, const char *hazard)
+{
+    const struct node *h = node_get(node_get(g->root, "hazards"), hazard);
+    const struct node *outcomes = node_get(h, "outcomes");
+    struct node *to = make_map(g);
+    for (size_t i = 0; outcomes && i < outcomes->n; i++)
+        put_text(g, to, outcomes->pairs[i].key, "sound");
+    if (to->n)
+        put_node(g, state, "failures", make_pair(g, hazard, to));
+}
+
 static void add_states(struct generator *g)
 {
-    static const char *const skip[] = {"when", "becomes", "renewed-by", "tests", NULL};
+    static const char *const skip[] = {"when",       "becomes", "failures",
+                                       "renewed-by", "tests",   NULL};
     bool varies = random_chance(g, 3);
+    g->winding_is_unknown = !varies;
     struct node *m = make_pair(g, varies ? "varies" : "is", shares(g));
     if (random_chance(g, 2) && !varies) /* what varies must agree with every option */
         put_node(g, m, "when", make_pair(g, "aged", small_change(g)));
-    if (random_chance(g, 2))
+    if (random_chance(g, 2) && !varies)
         put_node(g, m, "becomes",
                  make_pair(g, "sound", make_pair(g, "aged", random_quantity(g, FREQUENCY))));
-    if (random_chance(g, 2) && g->ids[KIND_OPTION].n)
+    if (random_chance(g, 2) && !varies && g->ids[KIND_HAZARD].n)
+        put_failures(g, m, random_id(g, KIND_HAZARD));
+    if (random_chance(g, 2) && !varies && g->ids[KIND_OPTION].n)
         put_node(g, m, "renewed-by",
                  make_pair(g, random_id(g, KIND_OPTION), make_scalar(g, "sound")));
-    put_node(g, m, "tests", make_pair(g, "OIL", survey(g)));
+    if (!varies)
+        put_node(g, m, "tests", make_pair(g, "OIL", survey(g)));
     fill_fields(g, m, kinds[KIND_STATE].table, skip);
     *array_push(g->arena, &g->ids[KIND_STATE]) = "WINDING";
     put_node(g, g->root, "states", make_pair(g, "WINDING", m));
@@ -323,7 +340,7 @@ static struct node *readings(struct generator *g, unsigned depth, bool may_go)
 static struct node *last_step(struct generator *g, unsigned depth, bool may_go)
 {
     struct node *m = make_map(g), *low = make_map(g), *high = make_map(g), *forks = make_map(g);
-    switch (random_draw(g, 0, 3)) {
+    switch (random_draw(g, g->winding_is_unknown ? 0 : 1, 3)) {
     case 0:
         put_text(g, m, "inspect", "WINDING.OIL");
         put_node(g, m, "reads", readings(g, depth, may_go));
@@ -346,10 +363,13 @@ static struct node *plain_step(struct generator *g)
 {
     switch (random_draw(g, 0, 3)) {
     case 0: return make_pair(g, "pay", random_quantity(g, MONEY));
-    case 1: return make_pair(g, "wait", make_scalar(g, random_literal(g, TIME)));
-    case 2:
-        if (g->ids[KIND_OPTION].n)
-            return make_pair(g, "apply", make_scalar(g, random_id(g, KIND_OPTION)));
+    case 1: /* all of them together are shorter than any horizon */
+        return make_pair(g, "wait",
+                         make_scalar(g, arena_printf(g->arena, "%u d", random_draw(g, 1, 30))));
+    case 2: /* none twice */
+        if (g->applied < g->ids[KIND_OPTION].n)
+            return make_pair(g, "apply",
+                             make_scalar(g, g->ids[KIND_OPTION].at[g->applied++]));
         return make_pair(g, "pay", make_scalar(g, "3 kEUR"));
     default: return make_pair(g, "change", small_change(g));
     }
@@ -368,12 +388,18 @@ static struct node *steps(struct generator *g, unsigned depth, bool may_go)
 /* A decision by a tree, beside those by options. */
 static void add_trees(struct generator *g)
 {
-    static const char *const skip[] = {"options", "choose", "subtrees", "sees", NULL};
+    static const char *const skip[] = {"options", "choose", "subtrees",
+                                       "every",   "sees",   NULL};
     struct node *m = make_map(g), *sees = make_list(g);
+    g->applied = 0;
     put_node(g, m, "choose", alternatives(g, 3, true));
     put_node(g, m, "subtrees", make_pair(g, "later", steps(g, 1, false)));
     node_push(g->arena, sees, make_scalar(g, "WINDING"));
-    put_node(g, m, "sees", sees);
+    if (g->years > 1 && random_chance(g, 2)) {
+        put_text(g, m, "every", "1 a");
+        if (g->winding_is_unknown)
+            put_node(g, m, "sees", sees);
+    }
     fill_fields(g, m, kinds[KIND_DECISION].table, skip);
     struct node *section = (struct node *)node_get(g->root, "decisions");
     put_node(g, section, "D-TREE", m);

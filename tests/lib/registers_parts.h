@@ -25,6 +25,9 @@ struct generator {
     struct ids own;      /* elements with a plain probability of their own */
     struct ids absent;   /* schemes that are absent */
     struct ids shares;   /* "share(rate-1; earth)" */
+    unsigned years;      /* of the horizon */
+    bool winding_is_unknown;
+    size_t applied; /* options that a tree applies already */
 };
 
 /* --- drawing --- */
