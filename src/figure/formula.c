@@ -261,6 +261,21 @@ static void write_course(struct writing *w, node_id n)
     text_printf(w->out, "; born %s a%s)", text_double(born, c->born), c->fresh ? "; fresh" : "");
 }
 
+/* "chain(2; from 0; 2.5 a; 0 to 1 at RATE; 1 to 2 at RATE)", or "chain(share of 2; ...)" for the
+ * mean share of the time: states have numbers, since the graph knows no names of theirs. */
+static void write_chain(struct writing *w, node_id n)
+{
+    const struct chain *c = graph_chain_of(w->f->graph, n);
+    char years[32];
+    text_printf(w->out, "chain(%s%u; from %u; %s a", c->mean ? "share of " : "", (unsigned)c->end,
+                (unsigned)c->start, text_double(years, c->years));
+    for (uint32_t i = 0; i < c->n_flows; i++) {
+        text_printf(w->out, "; %u to %u at ", (unsigned)c->from[i], (unsigned)c->to[i]);
+        write_node(w, graph_args(w->f->graph, n)[i], WEAKEST);
+    }
+    text_byte(w->out, ')');
+}
+
 /* How many years in a row hold the same value. */
 static uint32_t alike(const struct years *y, uint32_t i)
 {
@@ -401,6 +416,7 @@ static void write_node(struct writing *w, node_id n, unsigned around)
     case OP_LOOKUP: write_lookup(w, n); break;
     case OP_COURSE: write_course(w, n); break;
     case OP_YEARS: write_years(w, n, around); break;
+    case OP_CHAIN: write_chain(w, n); break;
     default: write_operation(w, n, around); break;
     }
 }

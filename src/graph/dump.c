@@ -10,7 +10,8 @@
  *     6 course (1; 0; 0; 1; 0) from 0 first 0.5 every 4 born 0 fresh
  *     7 diagram #0 (6; 6) over 0 1; 1 2
  *     8 pick (7) window 1 root 0
- *     9 years (1; 2; 2) from 0.5 to 2 of 0 1                                       */
+ *     9 years (1; 2; 2) from 0.5 to 2 of 0 1
+ *     10 chain (1; 2) of 3 states 0>1 1>2 over 2.5 from 0 to 2 mean                 */
 #include "graph/graph.h"
 
 #include <math.h>
@@ -76,6 +77,16 @@ static void dump_years(struct text *out, const struct years *y)
         text_printf(out, " %u", (unsigned)y->of_year[i]);
 }
 
+static void dump_chain(struct text *out, const struct chain *c)
+{
+    text_printf(out, " of %u states", (unsigned)c->n_states);
+    for (uint32_t f = 0; f < c->n_flows; f++)
+        text_printf(out, " %u>%u", (unsigned)c->from[f], (unsigned)c->to[f]);
+    dump_named(out, "over", c->years);
+    text_printf(out, " from %u to %u%s", (unsigned)c->start, (unsigned)c->end,
+                c->mean ? " mean" : "");
+}
+
 static void dump_windows(struct text *out, struct windows w)
 {
     for (size_t k = 0; k < w.n; k++) {
@@ -101,6 +112,7 @@ static void dump_extra(struct text *out, const struct graph *g, node_id id)
     case OP_DIAGRAM: dump_windows(out, graph_windows_of(g, id)); break;
     case OP_YEARS: dump_years(out, graph_years_of(g, id)); break;
     case OP_COURSE: dump_course(out, graph_course_of(g, id)); break;
+    case OP_CHAIN: dump_chain(out, graph_chain_of(g, id)); break;
     default: break;
     }
 }

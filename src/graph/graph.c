@@ -2,9 +2,9 @@
 /* The graph's storage and its building: nodes and arguments in two growing arrays,
  * sections as ranges of nodes, one table to find equal nodes of the open section.
  *
- * What does not fit into a node (the years of YEARS, the times of COURSE, the windows of a
- * DIAGRAM) is a table beside them, of which equal ones are one, found by a list of numbers
- * that says all about it.
+ * What does not fit into a node (the years of YEARS, the times of COURSE, the flows of a CHAIN,
+ * the windows of a DIAGRAM) is a table beside them, of which equal ones are one, found by a list of
+ * numbers that says all about it.
  *
  * Owns the arrays in the caller's arena; diagrams are borrowed. Invariants: an
  * argument has a smaller number than its node; nodes and arguments never change, so
@@ -35,7 +35,7 @@ struct slots {
 struct table {
     size_t n;
     const double *key;
-    const void *is; /* struct years, course or windows */
+    const void *is; /* struct years, course, chain or windows */
 };
 
 struct graph {
@@ -437,7 +437,7 @@ node_id graph_pick_in(struct graph *g, node_id diagram, uint32_t window, uint32_
                                          .extra = place}, &diagram);
 }
 
-/* ---- years and courses ---- */
+/* ---- years, courses and chains ---- */
 
 static bool years_fit(const struct years *y, size_t n)
 {
@@ -514,6 +514,49 @@ node_id graph_course(struct graph *g, const struct course *c, const node_id args
                                          .table = course_table(g, c)}, args);
 }
 
+static bool chain_fits(const struct chain *c)
+{
+    bool has_time = c->years >= 0 && isfinite(c->years) && (c->years > 0 || !c->mean);
+    if (!has_time || c->n_states > CHAIN_MOST_STATES || c->n_flows > CHAIN_MOST_FLOWS ||
+        c->start >= c->n_states || c->end >= c->n_states)
+        return false;
+    for (uint32_t f = 0; f < c->n_flows; f++)
+        if (c->from[f] >= c->n_states || c->to[f] >= c->n_states || c->from[f] == c->to[f])
+            return false;
+    return true;
+}
+
+static uint64_t chain_table(struct graph *g, const struct chain *c)
+{
+    enum { HEAD = 6 };
+    size_t n = HEAD + 2 * (size_t)c->n_flows;
+    double *key = key_room(g, n);
+    key[0] = OP_CHAIN, key[1] = c->n_states, key[2] = c->start, key[3] = c->end;
+    key[4] = c->mean, key[5] = c->years + 0.0; /* -0 is 0 */
+    for (uint32_t f = 0; f < c->n_flows; f++)
+        key[HEAD + 2 * f] = c->from[f], key[HEAD + 2 * f + 1] = c->to[f];
+    uint64_t number = table_number(g, n, key);
+    struct table *t = &g->tables.at[number - 1];
+    if (!t->is) {
+        struct chain *kept = NEW(g->arena, struct chain);
+        *kept = *c;
+        kept->from = arena_copy(g->arena, c->from, c->n_flows * sizeof *c->from);
+        kept->to = arena_copy(g->arena, c->to, c->n_flows * sizeof *c->to);
+        t->is = kept;
+    }
+    return number;
+}
+
+node_id graph_chain(struct graph *g, const struct chain *c, const node_id *args)
+{
+    bool fits = chain_fits(c);
+    assert(fits);
+    (void)fits;
+    struct dim dim = checked_dim(g, OP_CHAIN, c->n_flows, args);
+    return intern(g, (struct graph_node){.op = OP_CHAIN, .dim = dim_index(g, dim),
+                                         .n = c->n_flows, .table = chain_table(g, c)}, args);
+}
+
 /* ---- reading ---- */
 
 size_t graph_size(const struct graph *g)
@@ -566,4 +609,9 @@ const struct years *graph_years_of(const struct graph *g, node_id n)
 const struct course *graph_course_of(const struct graph *g, node_id n)
 {
     return table_of(g, n, OP_COURSE);
+}
+
+const struct chain *graph_chain_of(const struct graph *g, node_id n)
+{
+    return table_of(g, n, OP_CHAIN);
 }

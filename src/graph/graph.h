@@ -55,6 +55,7 @@ typedef uint32_t node_id;
     X(HELD, "held", 1, 1, "at-mean", 0) /* x, but its mean where means are taken     */ \
     X(YEARS, "years", 2, 255, "years", 0) /* rate, values: see graph_years           */ \
     X(COURSE, "course", 5, 5, "course", 0) /* a probability over time: graph_course   */ \
+    X(CHAIN, "chain", 1, 255, "chain", 0) /* a Markov chain in time: graph_chain      */ \
     X(DIAGRAM, "diagram", 0, 255, "diagram", 0) /* a decision diagram: many results  */\
     X(PICK, "pick", 1, 1, "pick", 0)    /* one result of a DIAGRAM                  */
 
@@ -75,7 +76,8 @@ struct graph_node {
                          the number of graph_apart, or 0 */
     union {
         double constant; /* CONST: the value; INPUT: the mean */
-        uint64_t table;  /* YEARS, COURSE, DIAGRAM over windows: which table; others: 0 */
+        uint64_t table;  /* YEARS, COURSE, CHAIN, DIAGRAM over windows: which table;
+                            others: 0 */
     };
 };
 
@@ -161,6 +163,29 @@ const struct course *graph_course_of(const struct graph *g, node_id n);
 /* p(t); before `from` and `born` as at these. x: values of the args. */
 double course_at(const struct course *c, const double x[5], double t);
 
+/* A Markov chain in continuous time: states 0 .. n_states - 1, and n_flows flows between two
+ * different ones, arg f being the rate of going from[f] to to[f]; several flows between the same
+ * two add. All args have one dimension, whose inverse is that of `years`. The value, a number, is
+ * the probability of being in `end` `years` after being in `start`; with `mean` the mean share of
+ * that time which is spent in `end`.
+ *
+ * A sum of terms none of which is negative (uniformization: Jensen, Skandinavisk Aktuarietidskrift
+ * 36 (1953) 87; Grassmann, Computers & Operations Research 4 (1977) 47; both from memory): however
+ * small it is, it is within 1e-12 of itself, so long as it is above 1e-250. Not a number where a
+ * rate is negative, or where years times the greatest sum of rates out of one state is above 1e5.
+ * years >= 0 and finite; > 0 with `mean`. The table is copied. 1 <= n_states <= CHAIN_MOST_STATES,
+ * 1 <= n_flows <= CHAIN_MOST_FLOWS. */
+enum { CHAIN_MOST_STATES = 64, CHAIN_MOST_FLOWS = 256 };
+struct chain {
+    uint32_t n_states, n_flows;
+    const uint32_t *from, *to;
+    double years;
+    uint32_t start, end;
+    bool mean;
+};
+node_id graph_chain(struct graph *g, const struct chain *c, const node_id *args);
+const struct chain *graph_chain_of(const struct graph *g, node_id n);
+
 /* A decision diagram over Boolean variables with independent probabilities (see
  * diagram.h) as an operation: args[i] is the probability that variable i is true,
  * n is at least the diagram's n_variables. Where args[i] is a COMPLEMENT node, the
@@ -208,14 +233,14 @@ struct graph_op_info {
 };
 const struct graph_op_info *graph_op_info(enum graph_op op);
 
-/* The point rule of an operation (not for CONST, INPUT, DIAGRAM, PICK, nor for YEARS and COURSE,
- * which need their tables); and its backward rule: adds
+/* The point rule of an operation (not for CONST, INPUT, DIAGRAM, PICK, nor for YEARS, COURSE
+ * and CHAIN, which need their tables); and its backward rule: adds
  * weight * d result / d args[i] to back[i]. At a tie of min or max the first arm
  * takes it all. */
 double graph_point(enum graph_op op, size_t n, const double *args);
 void graph_backward(enum graph_op op, size_t n, const double *args, double result, double weight,
                     double *back);
-/* The same for the operation of a node, with YEARS and COURSE: what src/eval asks for. */
+/* The same for the operation of a node, with YEARS, COURSE and CHAIN: what src/eval asks for. */
 double graph_node_point(const struct graph *g, node_id n, const double *args);
 void graph_node_backward(const struct graph *g, node_id n, const double *args, double result,
                          double weight, double *back);
@@ -224,7 +249,9 @@ void graph_node_backward(const struct graph *g, node_id n, const double *args, d
  * operation (ANNUITY, DIAGRAM, SUM, LOOKUP, COMPLEMENT ...) replaced by its
  * expansion into scalar operations: the oracle of the tests. Inputs keep their
  * numbers. An ANNUITY whose `from` or `to` is not constant, or which is longer than
- * 4096 years, has no such expansion and stays. Not for a DIAGRAM; `from` may be `to`. */
+ * 4096 years, has no such expansion and stays, as does a CHAIN of more than 8 states or 16 flows;
+ * that of a CHAIN is exact while the sum of its rates times years is at most 15. Not for a DIAGRAM;
+ * `from` may be `to`. */
 node_id graph_lower(struct graph *to, const struct graph *from, node_id root);
 
 /* The degree of `root` in its uncertain inputs: 0 none, 1 at most once each (then

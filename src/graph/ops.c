@@ -382,6 +382,13 @@ static bool unit_course(const struct graph *g, size_t n, const node_id *args, st
            dim_equal(graph_dim(g, args[COURSE_UNRESET]), rate);
 }
 
+/* Rates, whose inverse is the dimension of the chain's time. */
+static bool unit_rates(const struct graph *g, size_t n, const node_id *args, struct dim *out)
+{
+    *out = (struct dim){{0}};
+    return same_from(g, n, args, 1);
+}
+
 static bool unit_pick(const struct graph *g, size_t n, const node_id *args, struct dim *out)
 {
     *out = (struct dim){{0}};
@@ -418,6 +425,7 @@ static const struct op_rule rules[OP_COUNT] = {
     ROW(HELD,       held_point,       held_backward,     unit_same,     keep,       HELD),
     ROW(YEARS,      NULL,             NULL,              unit_years,    years,      CHOICE),
     ROW(COURSE,     NULL,             NULL,              unit_course,   course,     COURSE),
+    ROW(CHAIN,      NULL,             NULL,              unit_rates,    transitions, CURVED),
     ROW(DIAGRAM,    NULL,             NULL,              unit_number,   diagram,    PRODUCT),
     ROW(PICK,       NULL,             NULL,              unit_pick,     pick,       UNION),
 };
@@ -459,6 +467,8 @@ double graph_node_point(const struct graph *g, node_id n, const double *args)
         return years_point(graph_years_of(g, n), args);
     if (node->op == OP_COURSE)
         return course_at(graph_course_of(g, n), args, 0);
+    if (node->op == OP_CHAIN)
+        return chain_point(graph_chain_of(g, n), args);
     return graph_point(node->op, node->n, args);
 }
 
@@ -470,6 +480,8 @@ void graph_node_backward(const struct graph *g, node_id n, const double *args, d
         years_backward(graph_years_of(g, n), args, weight, back);
     else if (node->op == OP_COURSE)
         course_backward(graph_course_of(g, n), args, weight, back);
+    else if (node->op == OP_CHAIN)
+        chain_backward(graph_chain_of(g, n), args, weight, back);
     else
         graph_backward(node->op, node->n, args, result, weight, back);
 }

@@ -9,7 +9,7 @@
  * dimension the caller gives; DIAGRAM and PICK have no point and backward rule on
  * plain numbers, since a DIAGRAM has many results: src/eval calls
  * diagram_evaluate and diagram_backward, or average_values and average_slopes, for
- * them; YEARS and COURSE need their tables: graph_node_point and
+ * them; YEARS, COURSE and CHAIN need their tables: graph_node_point and
  * graph_node_backward know their rules. */
 #ifndef GRAPH_OPS_H
 #define GRAPH_OPS_H
@@ -67,6 +67,7 @@ node_id lower_annuity(struct lowering *l, node_id n);
 node_id lower_years(struct lowering *l, node_id n);
 node_id lower_either(struct lowering *l, node_id n);
 node_id lower_course(struct lowering *l, node_id n);
+node_id lower_transitions(struct lowering *l, node_id n); /* CHAIN */
 node_id lower_diagram(struct lowering *l, node_id n);
 node_id lower_pick(struct lowering *l, node_id n);
 
@@ -97,6 +98,10 @@ double annuity_worth(double d, double middle, double log_rate);
 double years_point(const struct years *y, const double *x);
 void years_backward(const struct years *y, const double *x, double w, double *back);
 double years_length(const struct years *y, size_t i, double *middle);
+
+/* CHAIN's rules (chain.c). */
+double chain_point(const struct chain *c, const double *x);
+void chain_backward(const struct chain *c, const double *x, double w, double *back);
 
 /* ANNUITY's rules (annuity.c); arguments: rate, from, to. */
 double annuity_point(size_t n, const double *x);

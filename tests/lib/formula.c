@@ -215,6 +215,7 @@ enum call {
     LOOKUP,
     EITHER,
     COURSE,
+    CHAIN,
     OVER,
     PROBABILITY,
     CALLS
@@ -229,7 +230,7 @@ static const struct {
     [RATIO] = {"ratio", 2},   [ANNUITY] = {"annuity", 3},
     [LOOKUP] = {"lookup", 0}, [PROBABILITY] = {"probability", 0},
     [EITHER] = {"either", 0}, [COURSE] = {"course", 0},
-    [OVER] = {"over", 0},
+    [OVER] = {"over", 0},     [CHAIN] = {"chain", 0},
 };
 
 static bool own_call(struct reader *r, enum call c, long double *out)
@@ -240,6 +241,7 @@ static bool own_call(struct reader *r, enum call c, long double *out)
     case LOOKUP: return lookup(r, out);
     case EITHER: return independent(r, out);
     case COURSE: return course_at_start(r, out);
+    case CHAIN: return formula_chain(r, out);
     case OVER: return formula_over(r, out);
     default: return formula_probability(r, out) && formula_expect(r, ')');
     }

@@ -44,6 +44,8 @@ bool formula_probability_over(struct reader *r, long double from, long double to
 /* Behind "course(" and "over(", with the closing parenthesis. */
 bool formula_read_course(struct reader *r, struct formula_course *out);
 bool formula_over(struct reader *r, long double *out);
+/* Behind "chain(", with the closing parenthesis. */
+bool formula_chain(struct reader *r, long double *out);
 /* What the world knows of a course by its name; false without an error. */
 bool formula_find_course(struct reader *r, const char *name, struct formula_course *out);
 

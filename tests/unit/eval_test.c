@@ -167,6 +167,8 @@ struct step {
     struct years years;
     uint32_t of_year[MOST_TOUCHED];
     struct course course;
+    struct chain chain;
+    uint32_t from[MOST_ARGS], to[MOST_ARGS]; /* of `chain` */
 };
 
 struct recipe {
@@ -191,6 +193,12 @@ static node_id build_step(struct built *b, const struct step *s)
         return graph_pick(b->g, graph_diagram(b->g, s->diagram, s->n, args), s->root);
     if (s->op == OP_COURSE)
         return graph_course(b->g, &s->course, args);
+    if (s->op == OP_CHAIN) {
+        struct chain chain = s->chain;
+        chain.from = s->from;
+        chain.to = s->to;
+        return graph_chain(b->g, &chain, args);
+    }
     if (s->op == OP_YEARS) {
         struct years years = s->years;
         years.of_year = s->of_year;
@@ -264,6 +272,19 @@ static void draw_course(struct random *r, struct step *s)
                                 .fresh = random_index(r, 2)};
 }
 
+/* The first flows lead from `start` to `end` through all states. */
+static void draw_chain(struct random *r, struct step *s)
+{
+    uint32_t n = (uint32_t)random_range(r, 2, s->n < 3 ? 2 : 3);
+    s->chain = (struct chain){.n_states = n, .n_flows = s->n, .mean = random_index(r, 2)};
+    s->chain.years = random_uniform(r, 0.2, 1.5);
+    s->chain.end = n - 1;
+    for (uint32_t f = 0; f < s->n; f++) {
+        s->from[f] = f + 1 < n ? f : (uint32_t)random_index(r, n);
+        s->to[f] = f + 1 < n ? f + 1 : (s->from[f] + 1 + (uint32_t)random_index(r, n - 1)) % n;
+    }
+}
+
 /* How many arguments, and which of them are constants. */
 static void draw_arguments(struct random *r, struct step *s)
 {
@@ -285,6 +306,8 @@ static void draw_arguments(struct random *r, struct step *s)
         draw_years(r, s);
     if (s->op == OP_COURSE)
         draw_course(r, s);
+    if (s->op == OP_CHAIN)
+        draw_chain(r, s);
     if (s->op == OP_PICK) {
         s->n = PER_DIAGRAM;
         s->diagram = draw_diagram(r);
@@ -323,7 +346,11 @@ static bool is_tame(const struct step *s, const double *x)
     for (uint32_t i = 0; probabilities && i < s->n; i++)
         if (x[i] > 0.9)
             return false;
+    double sum = 0;
+    for (uint32_t i = 0; i < s->n; i++)
+        sum += x[i];
     switch (s->op) {
+    case OP_CHAIN: return sum * s->chain.years < 12;
     case OP_SUBTRACT: return x[0] > 1.5 * x[1];
     case OP_EXP: return x[0] < 2.5;
     case OP_LOG: return x[0] > 1.3;
@@ -344,9 +371,10 @@ static bool is_fine(struct built *b, const struct step *s)
 
 /* NEGATE makes what no other step takes, so it comes in a pair: x - (-y). */
 static const enum graph_op drawn[] = {
-    OP_ADD,  OP_SUBTRACT, OP_MULTIPLY, OP_DIVIDE, OP_RATIO,  OP_NEGATE, OP_POWER,  OP_COMPLEMENT,
-    OP_SUM,  OP_MIN,      OP_MAX,      OP_EXP,    OP_LOG,    OP_SQRT,   OP_LOOKUP, OP_ANNUITY,
-    OP_PICK, OP_PICK,     OP_EITHER,   OP_YEARS,  OP_COURSE, OP_COURSE, OP_HELD,
+    OP_ADD,        OP_SUBTRACT, OP_MULTIPLY, OP_DIVIDE, OP_RATIO,  OP_NEGATE, OP_POWER,
+    OP_COMPLEMENT, OP_SUM,      OP_MIN,      OP_MAX,    OP_EXP,    OP_LOG,    OP_SQRT,
+    OP_LOOKUP,     OP_ANNUITY,  OP_PICK,     OP_PICK,   OP_EITHER, OP_YEARS,  OP_COURSE,
+    OP_COURSE,     OP_HELD,     OP_CHAIN,    OP_CHAIN,
 };
 
 static void draw_step(struct random *r, struct recipe *recipe, struct built *b)
@@ -491,9 +519,9 @@ START_TEST(lowered_graphs_are_equal)
         count_ops(b.g, false, before);
         count_ops(g, true, after);
     }
-    static const enum graph_op macros[] = {OP_SUM,     OP_LOOKUP,  OP_COMPLEMENT,
-                                           OP_ANNUITY, OP_DIAGRAM, OP_PICK,
-                                           OP_EITHER,  OP_YEARS,   OP_COURSE};
+    static const enum graph_op macros[] = {OP_SUM,     OP_LOOKUP, OP_COMPLEMENT, OP_ANNUITY,
+                                           OP_DIAGRAM, OP_PICK,   OP_EITHER,     OP_YEARS,
+                                           OP_COURSE,  OP_CHAIN};
     for (size_t i = 0; i < sizeof macros / sizeof *macros; i++) {
         ck_assert_msg(before[macros[i]] > 50, "%s: too few", graph_op_info(macros[i])->name);
         ck_assert_msg(after[macros[i]] == 0, "%s: left", graph_op_info(macros[i])->name);

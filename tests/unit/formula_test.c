@@ -183,6 +183,21 @@ START_TEST(probabilities)
 }
 END_TEST
 
+/* Two states: q / (q + r) (1 - exp(-s)), s = (q + r) t, in the mean less (1 - exp(-s)) / s; and two
+ * steps of the same rate, 1 - (1 + x) exp(-x). */
+START_TEST(chains)
+{
+    long double q = 0.02, s = (q + 2) / 2, lost = -expm1l(-s);
+    expect("chain(1; from 0; 0.5 a; 0 to 1 at 0.02 1/a; 1 to 0 at 2 1/a)", q / (q + 2) * lost);
+    expect("chain(share of 1; from 0; 4380 h; 0 to 1 at 0.02 1/a; 1 to 0 at 2 1/a)",
+           q / (q + 2) * (1 - lost / s));
+    expect("2 * chain(2; from 0; 1 a; 1 to 2 at (0.25 1/a + 0.5 1/a); 0 to 1 at 0.75 1/a)",
+           2 - 2 * 1.75L * expl(-0.75L));
+    refuse("chain(1; from 0; 1 a; 0 to 1 in 2 1/a)", "at");
+    refuse("chain(40; from 0; 1 a; 0 to 1 at 2 1/a)", "states");
+}
+END_TEST
+
 static bool find_course(void *ctx, const char *name, struct formula_course *out)
 {
     (void)ctx;
@@ -282,6 +297,7 @@ int main(void)
     tcase_add_test(t, calls_of_functions);
     tcase_add_test(t, annuities);
     tcase_add_test(t, probabilities);
+    tcase_add_test(t, chains);
     tcase_add_test(t, over_time);
     tcase_add_test(t, what_is_refused);
     tcase_add_test(t, limit_of_events);

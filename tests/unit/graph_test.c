@@ -47,7 +47,8 @@ START_TEST(every_row_has_its_rules)
 {
     for (int op = 0; op < OP_COUNT; op++) {
         const struct op_rule *rule = op_rule(op);
-        bool many = op == OP_DIAGRAM || op == OP_PICK || op == OP_YEARS || op == OP_COURSE;
+        bool many = op == OP_DIAGRAM || op == OP_PICK || op == OP_YEARS || op == OP_COURSE ||
+                    op == OP_CHAIN;
         ck_assert_msg(rule->lower != NULL, "%s: lower", graph_op_info(op)->name);
         ck_assert_msg(rule->degree != DEGREE_MISSING, "%s: degree", graph_op_info(op)->name);
         ck_assert_msg((rule->unit != NULL) == !is_leaf(op), "%s: unit", graph_op_info(op)->name);
@@ -465,6 +466,7 @@ START_TEST(unit_rules)
     FITS(COURSE, number, x, per, per, x, per), CLASHES(COURSE, x, per, x, x, per);
     CLASHES(COURSE, per, per, per, x, per), CLASHES(COURSE, x, per, per, x, x);
     CLASHES(COURSE, x, per, per, per, per), FITS(COURSE, number, x, x, x, x, x);
+    FITS(CHAIN, number, per, per), FITS(CHAIN, number, x), CLASHES(CHAIN, per, x);
     FITS(DIAGRAM, number, x, x), CLASHES(DIAGRAM, x, m), CLASHES(PICK, x);
 #undef ARGS
 #undef FITS

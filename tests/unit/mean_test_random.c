@@ -2,6 +2,7 @@
 /* Graphs drawn at random over discrete inputs, against enumeration: a node's value is known for
  * every combination of atoms, hence its mean, and whether it is linear in an input, and whether
  * it depends on it at all. */
+#include "graph/ops.h"
 #include "mean_test.h"
 
 #include "random.h"
@@ -69,8 +70,11 @@ struct step {
 static const enum graph_op drawn[] = {
     OP_ADD,    OP_SUBTRACT, OP_MULTIPLY, OP_MULTIPLY, OP_MULTIPLY, OP_DIVIDE, OP_RATIO,
     OP_NEGATE, OP_POWER,    OP_SUM,      OP_MIN,      OP_MAX,      OP_EXP,    OP_COMPLEMENT,
-    OP_SQRT,   OP_LOOKUP,   OP_ANNUITY,  OP_PICK,     OP_PICK,     OP_LOG,
+    OP_SQRT,   OP_LOOKUP,   OP_ANNUITY,  OP_PICK,     OP_PICK,     OP_LOG,    OP_CHAIN,
 };
+
+static const uint32_t chain_from[] = {0, 1, 1}, chain_to[] = {1, 0, 2};
+static const struct chain chain = {3, 3, chain_from, chain_to, 1.5, 0, 2, false};
 
 static struct step draw_step(struct random *r, size_t places)
 {
@@ -105,6 +109,8 @@ static double step_at(const struct step *s, size_t c)
         x[i] = arg_at(s, i, c);
     if (s->op == OP_PICK)
         return x[0] * x[1] + x[0] * x[2] + x[1] * x[2] - 2 * x[0] * x[1] * x[2];
+    if (s->op == OP_CHAIN)
+        return chain_point(&chain, x);
     return graph_point(s->op, s->n, x);
 }
 
@@ -125,6 +131,8 @@ static node_id build_step(const struct step *s)
         args[i] = isnan(s->constant[i]) ? node[s->arg[i]] : mean_const(&w, s->constant[i]);
     if (s->op == OP_PICK)
         return graph_pick(w.g, graph_diagram(w.g, two_of_three(), 3, args), 1);
+    if (s->op == OP_CHAIN)
+        return graph_chain(w.g, &chain, args);
     return graph_op(w.g, s->op, s->n, args);
 }
 

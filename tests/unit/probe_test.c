@@ -49,6 +49,7 @@ static node_id copy_node(struct copied *to, const struct graph *g, node_id n)
     case OP_INPUT: return graph_input(to->g, node->extra, node->constant, graph_dim(g, n));
     case OP_YEARS: return graph_years(to->g, args[0], node->n - 1, args + 1, graph_years_of(g, n));
     case OP_COURSE: return graph_course(to->g, graph_course_of(g, n), args);
+    case OP_CHAIN: return graph_chain(to->g, graph_chain_of(g, n), args);
     case OP_DIAGRAM:
         windows = graph_windows_of(g, n);
         return graph_diagram_over(to->g, graph_diagram_of(g, n), node->n, args, &windows);
@@ -185,13 +186,22 @@ static void draw_years(struct drawn *d)
     push(d, graph_years(d->g, rate(d), 2, values, &y));
 }
 
+static void draw_chain(struct drawn *d)
+{
+    static const uint32_t from[] = {0, 1, 1}, to[] = {1, 0, 2};
+    struct chain c = {3, 3, from, to, 1.25, 0, 0, random_index(&d->r, 2)};
+    node_id args[] = {rate(d), rate(d), rate(d)};
+    c.end = (uint32_t)random_index(&d->r, 3);
+    push(d, graph_chain(d->g, &c, args));
+}
+
 static void draw_step(struct drawn *d)
 {
     static const enum graph_op ops[] = {
         OP_ADD,    OP_SUBTRACT,   OP_MULTIPLY, OP_MULTIPLY, OP_DIVIDE,  OP_NEGATE,
         OP_POWER,  OP_COMPLEMENT, OP_SUM,      OP_RATIO,    OP_MIN,     OP_MAX,
         OP_EXP,    OP_HELD,       OP_EITHER,   OP_DIAGRAM,  OP_DIAGRAM, OP_YEARS,
-        OP_LOOKUP, OP_COURSE,     OP_SQRT,     OP_LOG,      OP_ANNUITY};
+        OP_LOOKUP, OP_COURSE,     OP_SQRT,     OP_LOG,      OP_ANNUITY, OP_CHAIN};
     enum graph_op op = random_pick(&d->r, ops);
     const struct graph_op_info *info = graph_op_info(op);
     node_id args[5];
@@ -201,6 +211,7 @@ static void draw_step(struct drawn *d)
     case OP_DIAGRAM: draw_diagram(d); return;
     case OP_YEARS: draw_years(d); return;
     case OP_COURSE: push(d, draw_course(d)); return;
+    case OP_CHAIN: draw_chain(d); return;
     case OP_POWER: args[1] = graph_const(d->g, random_index(&d->r, 2) ? 2 : 0.5, number); break;
     case OP_LOOKUP:
         args[1] = graph_const(d->g, 0.2, number), args[3] = graph_const(d->g, 0.6, number);

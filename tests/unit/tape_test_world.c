@@ -120,6 +120,17 @@ static node_id try_years(struct tape_world *w)
     return graph_years(w->g, args[0], 3, args + 1, &y);
 }
 
+static node_id add_chain(struct tape_world *w)
+{
+    static const uint32_t from[] = {0, 1, 1, 0}, to[] = {1, 0, 2, 1};
+    struct chain c = {3, 4, from, to, 0.75, 0, 0, random_index(&w->r, 2)};
+    node_id args[4];
+    for (int i = 0; i < 4; i++)
+        args[i] = draw_rate(w);
+    c.end = (uint32_t)random_index(&w->r, 3);
+    return graph_chain(w->g, &c, args);
+}
+
 /* ---- the others ---- */
 
 static size_t how_many(struct tape_world *w, enum graph_op op)
@@ -154,6 +165,7 @@ static node_id try_add(struct tape_world *w, enum graph_op op)
     case OP_INPUT: return w->pool.at[random_index(&w->r, TAPE_INPUTS)];
     case OP_YEARS: return try_years(w);
     case OP_COURSE: return add_diagram(w, true);
+    case OP_CHAIN: return add_chain(w);
     case OP_DIAGRAM:
     case OP_PICK: return add_diagram(w, false);
     default: return try_plain(w, op);
