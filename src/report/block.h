@@ -135,11 +135,13 @@ struct curve_point {
 };
 
 /* Points in ascending order of x, joined by straight lines on the page; two points
- * of one x are a jump. */
+ * of one x are a jump. In steps, the value of a point holds up to the x of the next one and jumps
+ * there, as distribution functions and exceedances of a few values do. */
 struct curve_line {
     const char *name;
     const char *symbol; /* one printable ASCII character: draws it when there are several */
     const char *figure; /* name of the figure that it is, or NULL */
+    bool steps;
     ARRAY(struct curve_point) points;
 };
 
@@ -353,7 +355,8 @@ struct curve_axis *curve_set_x(struct report *r, struct block *b, const char *ke
                                const char *head, const char *unit, enum number_style style);
 struct curve_axis *curve_set_y(struct report *r, struct block *b, const char *key,
                                const char *head, const char *unit, enum number_style style);
-/* A line without points and figure, and a mark without figures: set them in the result. */
+/* A line without points and figure, not in steps, and a mark without figures: set them in the
+ * result. */
 struct curve_line *curve_add_line(struct report *r, struct block *b, const char *name,
                                   const char *symbol);
 /* x is not below that of the line's last point (asserted, as are finite numbers). */

@@ -67,6 +67,12 @@ static void put_member(struct json *j, const char *key, const char *text, bool f
     put_string(j, text);
 }
 
+static void put_yes(struct json *j, const char *key, bool yes)
+{
+    put_key(j, key, false);
+    text_add(j->out, yes ? "true" : "false");
+}
+
 static void put_double(struct json *j, double x)
 {
     char buf[32];
@@ -259,6 +265,8 @@ static void put_curve_line(struct json *j, const struct curve_line *l)
     put_member(j, "symbol", l->symbol, false);
     if (l->figure)
         put_member(j, "figure", l->figure, false);
+    if (l->steps)
+        put_yes(j, "steps", true);
     put_points(j, l);
     text_byte(j->out, '}');
 }
@@ -424,12 +432,6 @@ static void put_spreads(struct json *j, const struct spreads *s)
 }
 
 /* --- trees --- */
-
-static void put_yes(struct json *j, const char *key, bool yes)
-{
-    put_key(j, key, false);
-    text_add(j->out, yes ? "true" : "false");
-}
 
 static void put_named(struct json *j, const char *key, double x, const char *unit,
                       const char *figure)

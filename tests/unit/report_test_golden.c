@@ -138,6 +138,28 @@ static void add_risks(struct report *r)
     }
 }
 
+/* How likely a year costs more than so much, of four things that happen or not. */
+static void add_exceedance(struct report *r)
+{
+    struct block *b = report_curve(r, "exceedance", "How bad a year can be");
+    curve_set_x(r, b, "damage", "Damage in a year", "EUR", STYLE_MONEY)->log = true;
+    curve_set_y(r, b, "exceedance", "Probability that it is more", "", STYLE_PROBABILITY)->log =
+        true;
+    static const struct {
+        const char *name, *symbol;
+        double damages[4], above[4];
+    } lines[] = {
+        {"As it is", "t", {2385, 185000, 4.2e6, 61.7e6}, {0.61, 0.0213, 2.94e-3, 7.1e-5}},
+        {"Both options", "b", {2385, 72000, 9.1e5, 2.3e7}, {0.34, 0.0192, 1.2e-4, 1.7e-6}}};
+    for (int i = 0; i < 2; i++) {
+        struct curve_line *l = curve_add_line(r, b, lines[i].name, lines[i].symbol);
+        l->steps = true;
+        for (int k = 0; k < 4; k++)
+            curve_add_point(r, l, lines[i].damages[k], lines[i].above[k]);
+        curve_add_point(r, l, i ? 6e7 : 1.2e8, 0);
+    }
+}
+
 /* What the yearly cost would be at both ends of what is not known, widest first. */
 static void add_swings(struct report *r)
 {
@@ -326,6 +348,7 @@ static struct report sample(struct arena *a)
     add_sawtooth(&r);
     add_costs(&r);
     add_risks(&r);
+    add_exceedance(&r);
     add_swings(&r);
     add_map(&r);
     add_spreads(&r);

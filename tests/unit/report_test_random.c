@@ -138,6 +138,7 @@ void add_some_curve(struct random *r, struct report *report)
     for (size_t i = random_index(r, 4); i-- > 0;) {
         struct curve_line *l = curve_add_line(report, b, some_text(r), some_text(r));
         double x = drawable(some_number(r));
+        l->steps = random_index(r, 3) == 0;
         for (size_t k = random_index(r, 20); k-- > 0; x = fmax(x, drawable(some_number(r))))
             curve_add_point(report, l, x, drawable(some_number(r)));
     }
