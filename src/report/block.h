@@ -25,7 +25,9 @@ enum block_type {
     BLOCK_SIGNATURES,
     BLOCK_SWINGS,
     BLOCK_MAP,
-    BLOCK_SPREADS
+    BLOCK_SPREADS,
+    BLOCK_TREE,
+    BLOCK_POLICY
 };
 
 enum cell_type {
@@ -133,11 +135,13 @@ struct curve_point {
 };
 
 /* Points in ascending order of x, joined by straight lines on the page; two points
- * of one x are a jump. */
+ * of one x are a jump. In steps, the value of a point holds up to the x of the next one and jumps
+ * there, as distribution functions and exceedances of a few values do. */
 struct curve_line {
     const char *name;
     const char *symbol; /* one printable ASCII character: draws it when there are several */
     const char *figure; /* name of the figure that it is, or NULL */
+    bool steps;
     ARRAY(struct curve_point) points;
 };
 
@@ -211,6 +215,57 @@ struct spread {
 
 struct spreads ARRAY_BODY(struct spread);
 
+enum tree_kind { TREE_CHOOSE, TREE_CHANCE, TREE_END };
+
+/* A node of a tree of choices and chances, with the branch that leads to it. Numbers are finite. */
+struct tree_node {
+    enum tree_kind kind;
+    const char *label;    /* of the branch: "survey-first"; of the root: what is asked */
+    const char *steps;    /* what happens on the branch, in words: "pay 15 kEUR; wait 3 month", or
+                          NULL */
+    bool has_probability; /* the branch leaves a chance */
+    double probability;
+    const char *probability_figure;
+    double value; /* of the node, in the tree's unit */
+    const char *value_figure;
+    double reach; /* probability of getting here when the best branches are taken */
+    const char *reach_figure;
+    bool best;           /* the branch to take at its parent, a choice; the root is best */
+    bool folded;         /* pages do not show its children, but say how many ends lie below */
+    size_t ends;         /* below it */
+    const char *same_as; /* the path of labels of a node that this one repeats,
+                            "survey-first.poor", or NULL */
+    ARRAY(struct tree_node *) children;
+};
+
+struct tree {
+    const char *unit, *value_head;
+    enum number_style style;
+    struct tree_node *root; /* or NULL */
+};
+
+/* One of the things that can be done. */
+struct policy_action {
+    const char *name;
+    bool nothing; /* doing nothing: a point, not a letter */
+};
+
+#define POLICY_NONE SIZE_MAX /* no action: the condition cannot hold at that time */
+
+struct policy_cell {
+    size_t action; /* its index, or POLICY_NONE */
+    double reach;  /* probability of being there, 0 to 1 */
+    const char *figure;
+};
+
+/* What to do when: a row for each condition, a column for each time. */
+struct policy {
+    ARRAY(struct policy_action) actions;
+    ARRAY(const char *) times;
+    ARRAY(const char *) conditions;
+    ARRAY(struct policy_cell) cells; /* by rows, once there are all conditions and times */
+};
+
 struct block {
     enum block_type type;
     const char *key;     /* in JSON: names the block; NULL: not printed there (headings) */
@@ -230,6 +285,8 @@ struct block {
     struct swings *swings;   /* BLOCK_SWINGS */
     struct map *map;         /* BLOCK_MAP */
     struct spreads *spreads; /* BLOCK_SPREADS */
+    struct tree *tree;       /* BLOCK_TREE */
+    struct policy *policy;   /* BLOCK_POLICY */
 };
 
 struct report {
@@ -256,6 +313,13 @@ struct block *report_swings(struct report *r, const char *key, const char *title
 struct block *report_map(struct report *r, const char *key, const char *title);
 /* Numbers with their ranges from 5 to 95 %. */
 struct block *report_spreads(struct report *r, const char *key, const char *title);
+
+/* Choices and chances, and what they are worth: `head` names the values ("Worth"), which are in
+ * `unit`. */
+struct block *report_tree(struct report *r, const char *key, const char *title, const char *unit,
+                          enum number_style style, const char *head);
+/* What to do, by condition and time. */
+struct block *report_policy(struct report *r, const char *key, const char *title);
 
 /* Lines to be signed on paper: for each of the n roles ("Checked") one for a name and one for a
  * date. JSON and CSV have a row for each, its name and date empty. */
@@ -291,7 +355,8 @@ struct curve_axis *curve_set_x(struct report *r, struct block *b, const char *ke
                                const char *head, const char *unit, enum number_style style);
 struct curve_axis *curve_set_y(struct report *r, struct block *b, const char *key,
                                const char *head, const char *unit, enum number_style style);
-/* A line without points and figure, and a mark without figures: set them in the result. */
+/* A line without points and figure, not in steps, and a mark without figures: set them in the
+ * result. */
 struct curve_line *curve_add_line(struct report *r, struct block *b, const char *name,
                                   const char *symbol);
 /* x is not below that of the line's last point (asserted, as are finite numbers). */
@@ -331,6 +396,23 @@ struct spread *spreads_add(struct report *r, struct block *b, const char *label,
                            enum number_style style);
 void spread_set(struct report *r, struct spread *s, enum spread_part part, double value,
                 double error, const char *figure);
+
+/* A node below its parent (NULL: the root, of which there is one), without steps, numbers, figures
+ * and marks: set them in the result, which stays where it is. */
+struct tree_node *tree_add(struct report *r, struct block *b, struct tree_node *parent,
+                           enum tree_kind kind, const char *label);
+
+struct policy_action *policy_add_action(struct report *r, struct block *b, const char *name,
+                                        bool nothing);
+/* All times and conditions are added before the first cell is set (asserted). */
+void policy_add_time(struct report *r, struct block *b, const char *label);
+void policy_add_condition(struct report *r, struct block *b, const char *label);
+/* Cells that are not set have no action and are never reached. figure: NULL, or the name of that
+ * which chose the action. */
+void policy_set(struct report *r, struct block *b, size_t condition, size_t time, size_t action,
+                double reach, const char *figure);
+/* Whether there is a condition and a time. */
+bool policy_is_whole(const struct policy *p);
 
 struct report_format {
     unsigned width; /* columns: 60..200 */

@@ -9,6 +9,8 @@
 
 #include "report/block.h"
 #include "report/clean.h"
+#include "report/policy_plane.h"
+#include "report/tree_list.h"
 
 struct csv_out {
     struct text *out;
@@ -265,6 +267,8 @@ static bool is_table(const struct block *b)
     case BLOCK_SWINGS: return b->swings->rows.n > 0;
     case BLOCK_MAP: return map_is_whole(b->map);
     case BLOCK_SPREADS: return b->spreads->n > 0;
+    case BLOCK_TREE: return b->tree->root != NULL;
+    case BLOCK_POLICY: return policy_is_whole(b->policy);
     default: return false;
     }
 }
@@ -277,6 +281,8 @@ static void write_block(struct csv_out *w, const struct block *b)
     case BLOCK_SWINGS: write_swings(w, b->swings); break;
     case BLOCK_MAP: write_map(w, b->map); break;
     case BLOCK_SPREADS: write_spreads(w, b->spreads); break;
+    case BLOCK_TREE: write_table(w, tree_data(w->arena, b->tree)); break;
+    case BLOCK_POLICY: write_table(w, policy_data(w->arena, b->policy)); break;
     default: write_table(w, b);
     }
 }

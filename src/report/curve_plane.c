@@ -23,12 +23,13 @@ static void widen_range(struct range *r, double value)
     r->greatest = fmax(r->greatest, value);
 }
 
-static void find_ranges(const struct curve *c, struct range *x, struct range *y)
+static void find_ranges(const struct curve_plane *g, struct range *x, struct range *y)
 {
+    const struct curve *c = g->curve;
     *x = *y = (struct range){INFINITY, -INFINITY};
     for (size_t i = 0; i < c->lines.n; i++) {
-        for (size_t k = 0; k < c->lines.at[i].points.n; k++) {
-            const struct curve_point *p = &c->lines.at[i].points.at[k];
+        for (size_t k = 0; k < g->drawn[i].n; k++) {
+            const struct curve_point *p = &g->drawn[i].at[k];
             if (!has_place(c, p->x, p->y))
                 continue;
             widen_range(x, p->x);
@@ -43,11 +44,27 @@ static void find_ranges(const struct curve *c, struct range *x, struct range *y)
     }
 }
 
+/* The corner of a step stands above or below the next point, at the height of the last. */
+static struct curve_points drawn_points(struct arena *a, const struct curve_line *l)
+{
+    struct curve_points points = {0};
+    for (size_t i = 0; i < l->points.n; i++) {
+        const struct curve_point *p = &l->points.at[i];
+        if (l->steps && i && p->x > l->points.at[i - 1].x && p->y != l->points.at[i - 1].y)
+            *array_push(a, &points) = (struct curve_point){p->x, l->points.at[i - 1].y};
+        *array_push(a, &points) = *p;
+    }
+    return points;
+}
+
 void curve_plane_range(struct curve_plane *g)
 {
     const struct curve *c = g->curve;
     struct range x, y;
-    find_ranges(c, &x, &y);
+    g->drawn = NEW_ARRAY(g->page->arena, c->lines.n, struct curve_points);
+    for (size_t i = 0; i < c->lines.n; i++)
+        g->drawn[i] = drawn_points(g->page->arena, &c->lines.at[i]);
+    find_ranges(g, &x, &y);
     g->empty = x.least > x.greatest;
     g->x.axis = &c->x;
     g->y.axis = &c->y;
@@ -118,12 +135,12 @@ static void cover(struct curve_span *spans, int columns, struct spot p, struct s
 
 static void find_spans(struct curve_plane *g, size_t line)
 {
-    const struct curve_line *l = &g->curve->lines.at[line];
+    const struct curve_points *points = &g->drawn[line];
     struct curve_span *spans = g->spans + line * (size_t)g->columns;
     struct spot last = {0};
     bool joined = false;
-    for (size_t i = 0; i < l->points.n; i++) {
-        const struct curve_point *p = &l->points.at[i];
+    for (size_t i = 0; i < points->n; i++) {
+        const struct curve_point *p = &points->at[i];
         bool placed = has_place(g->curve, p->x, p->y);
         if (placed) {
             struct spot s = {curve_place(&g->x, p->x), curve_place(&g->y, p->y)};

@@ -55,9 +55,13 @@ struct curve_span {
     int way;
 };
 
+/* The points through which a line is drawn: in steps, with the corners between its own. */
+struct curve_points ARRAY_BODY(struct curve_point);
+
 struct curve_plane {
     const struct page *page;
     const struct curve *curve;
+    struct curve_points *drawn; /* one a line */
     struct curve_scale x, y;
     int columns;
     enum curve_manner manner;

@@ -138,6 +138,8 @@ static void put_block(struct html *h, const struct block *b, const char *id)
     case BLOCK_SWINGS: html_swings(h, b, id); break;
     case BLOCK_MAP: html_map(h, b, id); break;
     case BLOCK_SPREADS: html_spreads(h, b, id); break;
+    case BLOCK_TREE: html_tree(h, b, id); break;
+    case BLOCK_POLICY: html_policy(h, b, id); break;
     }
 }
 
@@ -159,7 +161,7 @@ static const char *title_of(const struct report *r)
 
 static bool is_picture(const struct block *b)
 {
-    return b->grid || b->curve || b->swings || b->map || b->spreads;
+    return b->grid || b->curve || b->swings || b->map || b->spreads || b->tree || b->policy;
 }
 
 static bool has_figures(const struct report *r)

@@ -59,5 +59,7 @@ void html_curve(struct html *h, const struct block *b, const char *id);
 void html_swings(struct html *h, const struct block *b, const char *id);
 void html_map(struct html *h, const struct block *b, const char *id);
 void html_spreads(struct html *h, const struct block *b, const char *id);
+void html_tree(struct html *h, const struct block *b, const char *id);
+void html_policy(struct html *h, const struct block *b, const char *id);
 
 #endif

@@ -99,44 +99,43 @@ static void put_point(struct picture *f, char step, double x, double y)
 }
 
 /* Points from `from` on that have a place; returns the number of the first that has none. */
-static size_t run_from(const struct picture *f, const struct curve_line *l, size_t from)
+static size_t run_from(const struct picture *f, const struct curve_points *l, size_t from)
 {
-    while (from < l->points.n &&
-           has_place(f->plane.curve, l->points.at[from].x, l->points.at[from].y))
+    while (from < l->n && has_place(f->plane.curve, l->at[from].x, l->at[from].y))
         from++;
     return from;
 }
 
-static void put_run(struct picture *f, const struct curve_line *l, size_t from, size_t end)
+static void put_run(struct picture *f, const struct curve_points *l, size_t from, size_t end)
 {
     for (size_t i = from; i < end; i++)
-        put_point(f, i == from ? 'M' : 'L', x_at(f, l->points.at[i].x), y_at(f, l->points.at[i].y));
+        put_point(f, i == from ? 'M' : 'L', x_at(f, l->at[i].x), y_at(f, l->at[i].y));
     if (end == from + 1) /* a dot: a stroke without length, round at its ends */
-        put_point(f, 'L', x_at(f, l->points.at[from].x), y_at(f, l->points.at[from].y));
+        put_point(f, 'L', x_at(f, l->at[from].x), y_at(f, l->at[from].y));
 }
 
-static void put_area(struct picture *f, const struct curve_line *l, size_t from, size_t end)
+static void put_area(struct picture *f, const struct curve_points *l, size_t from, size_t end)
 {
     double bottom = f->top + PLANE_HEIGHT;
     html_raw(f->html, "<path class=\"area\" d=\"");
-    put_point(f, 'M', x_at(f, l->points.at[from].x), bottom);
+    put_point(f, 'M', x_at(f, l->at[from].x), bottom);
     for (size_t i = from; i < end; i++)
-        put_point(f, 'L', x_at(f, l->points.at[i].x), y_at(f, l->points.at[i].y));
-    put_point(f, 'L', x_at(f, l->points.at[end - 1].x), bottom);
+        put_point(f, 'L', x_at(f, l->at[i].x), y_at(f, l->at[i].y));
+    put_point(f, 'L', x_at(f, l->at[end - 1].x), bottom);
     html_raw(f->html, "Z\"/>\n");
 }
 
-static void keep_run(struct picture *f, const struct curve_line *l, size_t from, size_t end)
+static void keep_run(struct picture *f, const struct curve_points *l, size_t from, size_t end)
 {
     for (size_t i = from + 1; i < end; i++)
-        place_add_stroke(&f->places, x_at(f, l->points.at[i - 1].x), y_at(f, l->points.at[i - 1].y),
-                         x_at(f, l->points.at[i].x), y_at(f, l->points.at[i].y));
+        place_add_stroke(&f->places, x_at(f, l->at[i - 1].x), y_at(f, l->at[i - 1].y),
+                         x_at(f, l->at[i].x), y_at(f, l->at[i].y));
 }
 
 static void put_line(struct picture *f, size_t i)
 {
-    const struct curve_line *l = &f->plane.curve->lines.at[i];
-    for (size_t from = 0; from < l->points.n;) {
+    const struct curve_points *l = &f->plane.drawn[i];
+    for (size_t from = 0; from < l->n;) {
         size_t end = run_from(f, l, from);
         if (end > from) {
             if (f->plane.manner == CURVE_AREA)
@@ -146,17 +145,17 @@ static void put_line(struct picture *f, size_t i)
             html_raw(f->html, "\"/>\n");
             keep_run(f, l, from, end);
         }
-        from = end + (end < l->points.n);
+        from = end + (end < l->n);
     }
 }
 
 /* --- symbols --- */
 
 /* The height of a line at x, straight between the points on both sides of it. */
-static bool height_at(const struct picture *f, const struct curve_line *l, double x, double *y)
+static bool height_at(const struct picture *f, const struct curve_points *l, double x, double *y)
 {
-    for (size_t i = 1; i < l->points.n; i++) {
-        const struct curve_point *p = &l->points.at[i - 1], *q = &l->points.at[i];
+    for (size_t i = 1; i < l->n; i++) {
+        const struct curve_point *p = &l->at[i - 1], *q = &l->at[i];
         if (!has_place(f->plane.curve, p->x, p->y) || !has_place(f->plane.curve, q->x, q->y))
             continue;
         double px = x_at(f, p->x), qx = x_at(f, q->x);
@@ -175,7 +174,7 @@ static void put_symbols(struct picture *f)
     size_t n = g->curve->lines.n;
     for (size_t i = 0; i < n * SYMBOLS; i++) {
         double x = f->left + f->width * ((double)i + 0.5) / (double)(n * SYMBOLS), y;
-        if (!height_at(f, &g->curve->lines.at[i % n], x, &y))
+        if (!height_at(f, &g->drawn[i % n], x, &y))
             continue;
         struct place_box b = {x - 6, y - 7, 12, 14};
         for (size_t k = 0; k < f->places.boxes.n; k++)

@@ -67,6 +67,12 @@ static void put_member(struct json *j, const char *key, const char *text, bool f
     put_string(j, text);
 }
 
+static void put_yes(struct json *j, const char *key, bool yes)
+{
+    put_key(j, key, false);
+    text_add(j->out, yes ? "true" : "false");
+}
+
 static void put_double(struct json *j, double x)
 {
     char buf[32];
@@ -259,6 +265,8 @@ static void put_curve_line(struct json *j, const struct curve_line *l)
     put_member(j, "symbol", l->symbol, false);
     if (l->figure)
         put_member(j, "figure", l->figure, false);
+    if (l->steps)
+        put_yes(j, "steps", true);
     put_points(j, l);
     text_byte(j->out, '}');
 }
@@ -423,10 +431,123 @@ static void put_spreads(struct json *j, const struct spreads *s)
     text_byte(j->out, ']');
 }
 
+/* --- trees --- */
+
+static void put_named(struct json *j, const char *key, double x, const char *unit,
+                      const char *figure)
+{
+    put_key(j, key, false);
+    put_value(j, x, unit, figure);
+    text_byte(j->out, '}');
+}
+
+static void put_node(struct json *j, const struct tree *t, const struct tree_node *n)
+{
+    static const char *const kinds[] = {"choice", "chance", "end"};
+    text_byte(j->out, '{');
+    put_member(j, "label", n->label, true);
+    put_member(j, "kind", kinds[n->kind], false);
+    if (n->steps)
+        put_member(j, "steps", n->steps, false);
+    if (n->has_probability)
+        put_named(j, "probability", n->probability, NULL, n->probability_figure);
+    put_named(j, "value", n->value, t->style == STYLE_PERCENT ? NULL : t->unit, n->value_figure);
+    put_named(j, "reach", n->reach, NULL, n->reach_figure);
+    put_yes(j, "best", n->best);
+    put_yes(j, "folded", n->folded);
+    put_key(j, "ends", false);
+    text_printf(j->out, "%zu", n->ends);
+    if (n->same_as)
+        put_member(j, "same-as", n->same_as, false);
+}
+
+/* A node on a line of its own, its children within it. */
+static void put_nodes(struct json *j, const struct tree *t, const struct tree_node *n)
+{
+    put_node(j, t, n);
+    open_list(j, "children");
+    for (size_t i = 0; i < n->children.n; i++) {
+        next_line(j, i);
+        put_nodes(j, t, n->children.at[i]);
+    }
+    text_add(j->out, "]}");
+}
+
+static void put_tree(struct json *j, const struct tree *t)
+{
+    put_member(j, "head", t->value_head, false);
+    if (*t->unit && t->style != STYLE_PERCENT)
+        put_member(j, "unit", t->unit, false);
+    if (!t->root)
+        return;
+    put_key(j, "root", false);
+    put_nodes(j, t, t->root);
+}
+
+/* --- policies --- */
+
+static void put_actions(struct json *j, const struct policy *o)
+{
+    open_list(j, "actions");
+    for (size_t i = 0; i < o->actions.n; i++) {
+        next_line(j, i);
+        text_byte(j->out, '{');
+        put_member(j, "name", o->actions.at[i].name, true);
+        put_yes(j, "nothing", o->actions.at[i].nothing);
+        text_byte(j->out, '}');
+    }
+    text_byte(j->out, ']');
+}
+
+static void put_strings(struct json *j, const char *name, const char *const *at, size_t n)
+{
+    open_list(j, name);
+    for (size_t i = 0; i < n; i++) {
+        text_add(j->out, i ? ", " : "");
+        put_string(j, at[i]);
+    }
+    text_byte(j->out, ']');
+}
+
+/* The index of the action, or null, and the probability of being there. */
+static void put_policy_cell(struct json *j, const struct policy_cell *c)
+{
+    text_byte(j->out, '{');
+    put_key(j, "action", true);
+    if (c->action == POLICY_NONE)
+        text_add(j->out, "null");
+    else
+        text_printf(j->out, "%zu", c->action);
+    put_key(j, "reach", false);
+    put_double(j, c->reach);
+    if (c->figure)
+        put_member(j, "figure", c->figure, false);
+    text_byte(j->out, '}');
+}
+
+static void put_policy(struct json *j, const struct policy *o)
+{
+    put_actions(j, o);
+    put_strings(j, "times", o->times.at, o->times.n);
+    put_strings(j, "conditions", o->conditions.at, o->conditions.n);
+    open_list(j, "rows");
+    for (size_t i = 0; i < o->cells.n; i++) {
+        bool first = i % o->times.n == 0;
+        if (first && i)
+            text_byte(j->out, ']');
+        if (first)
+            next_line(j, i);
+        text_add(j->out, first ? "[" : ", ");
+        put_policy_cell(j, &o->cells.at[i]);
+    }
+    text_add(j->out, o->cells.n ? "]]" : "]");
+}
+
 static void put_block(struct json *j, const struct block *b)
 {
-    static const char *const types[] = {"heading", "note",       "pairs",  "table", "grid",
-                                        "curve",   "signatures", "swings", "map",   "spreads"};
+    static const char *const types[] = {"heading", "note",    "pairs",      "table",
+                                        "grid",    "curve",   "signatures", "swings",
+                                        "map",     "spreads", "tree",       "policy"};
     text_byte(j->out, '{');
     put_member(j, "key", b->key, true);
     put_member(j, "type", types[b->type], false);
@@ -443,6 +564,8 @@ static void put_block(struct json *j, const struct block *b)
     case BLOCK_SWINGS: put_swings(j, b->swings); break;
     case BLOCK_MAP: put_map(j, b->map); break;
     case BLOCK_SPREADS: put_spreads(j, b->spreads); break;
+    case BLOCK_TREE: put_tree(j, b->tree); break;
+    case BLOCK_POLICY: put_policy(j, b->policy); break;
     }
     text_byte(j->out, '}');
 }

@@ -27,11 +27,16 @@ static void open_way(struct map_way *w, const struct curve_axis *axis, const dou
         w->at[i] = map_place(w, values[i]);
 }
 
-static const char *sign_of(const struct map_plane *g, size_t letter)
+const char *map_nothing_sign(const struct page *p)
+{
+    return p->ascii ? "." : "·";
+}
+
+const char *map_letter(const struct page *p, size_t n)
 {
     static const char letters[] = "ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789";
-    bool known = letter < sizeof letters - 1;
-    return known ? arena_strn(g->page->arena, letters + letter, 1) : "?";
+    bool known = n < sizeof letters - 1;
+    return known ? arena_strn(p->arena, letters + n, 1) : "?";
 }
 
 void map_open(struct map_plane *g, const struct page *p, const struct map *m)
@@ -43,7 +48,7 @@ void map_open(struct map_plane *g, const struct page *p, const struct map *m)
     g->signs = NEW_ARRAY(p->arena, m->choices.n, const char *);
     size_t letter = 0;
     for (size_t i = 0; i < m->choices.n; i++)
-        g->signs[i] = m->choices.at[i].nothing ? p->ascii ? "." : "·" : sign_of(g, letter++);
+        g->signs[i] = m->choices.at[i].nothing ? map_nothing_sign(p) : map_letter(p, letter++);
 }
 
 void map_tick(struct map_way *w, int columns, struct arena *a)

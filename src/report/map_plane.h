@@ -26,6 +26,10 @@ struct map_plane {
     const char **signs; /* one a choice */
 };
 
+/* The sign of doing nothing, and that of the n-th of the other choices, from 0. */
+const char *map_nothing_sign(const struct page *p);
+const char *map_letter(const struct page *p, size_t n);
+
 /* The map is whole. */
 void map_open(struct map_plane *g, const struct page *p, const struct map *m);
 /* Chooses ticks; a label must stand apart from the next in this number of columns. */

@@ -66,5 +66,7 @@ void page_curve(struct page *p, const struct curve *c);
 void page_swings(struct page *p, const struct swings *s);
 void page_map(struct page *p, const struct map *m);
 void page_spreads(struct page *p, const struct spreads *s);
+void page_tree(struct page *p, const struct tree *t);
+void page_policy(struct page *p, const struct policy *o);
 
 #endif

@@ -273,6 +273,8 @@ static void write_block(struct page *p, const struct block *b)
     case BLOCK_SWINGS: page_swings(p, b->swings); break;
     case BLOCK_MAP: page_map(p, b->map); break;
     case BLOCK_SPREADS: page_spreads(p, b->spreads); break;
+    case BLOCK_TREE: page_tree(p, b->tree); break;
+    case BLOCK_POLICY: page_policy(p, b->policy); break;
     }
 }
 

@@ -10,7 +10,7 @@ enum {
 
 /* --- its structure --- */
 
-struct tree {
+struct outline {
     struct job *job;
     struct block *block;
     size_t level, depth;   /* of lines; of schemes */
@@ -18,7 +18,7 @@ struct tree {
 };
 
 /* One line of the tree, behind a bar for each level. */
-static struct row *tree_row(struct tree *x, const char *words)
+static struct row *tree_row(struct outline *x, const char *words)
 {
     struct text t;
     text_init(&t, x->job->arena);
@@ -29,7 +29,7 @@ static struct row *tree_row(struct tree *x, const char *words)
     return row;
 }
 
-static void write_structure(struct tree *x, const struct structure *s);
+static void write_structure(struct outline *x, const struct structure *s);
 
 /* The mean probability that a part fails, where the figures have it. */
 static void fails_cell(struct job *j, struct row *row, const char *id)
@@ -45,7 +45,7 @@ static void fails_cell(struct job *j, struct row *row, const char *id)
 }
 
 /* A scheme within the scheme, by its own structure. */
-static void write_scheme(struct tree *x, const struct object *o)
+static void write_scheme(struct outline *x, const struct object *o)
 {
     if (x->depth >= TREE_DEPTH || strmap_has(&x->written, o->id))
         return;
@@ -57,7 +57,7 @@ static void write_scheme(struct tree *x, const struct object *o)
     x->depth--;
 }
 
-static void write_part(struct tree *x, const char *id)
+static void write_part(struct outline *x, const char *id)
 {
     const struct object *o = model_find(x->job->model, id);
     struct row *row = tree_row(x, id);
@@ -76,7 +76,7 @@ static const char *gate_words(struct job *j, const struct structure *s)
     return s->k == 1 ? "any of" : arena_printf(j->arena, "%u of these %zu", s->k, s->n);
 }
 
-static void write_structure(struct tree *x, const struct structure *s)
+static void write_structure(struct outline *x, const struct structure *s)
 {
     if (s->op == STRUCTURE_NAME) {
         write_part(x, s->name);
@@ -98,7 +98,7 @@ static void part_structure(struct job *j, const struct scheme *s)
     block_column(r, b, "needs", "Needs", "", STYLE_PLAIN);
     block_column(r, b, "name", "What it is", "", STYLE_PLAIN)->keep = 1;
     block_column(r, b, "fails", "Fails", "", STYLE_PROBABILITY);
-    struct tree x = {.job = j, .block = b};
+    struct outline x = {.job = j, .block = b};
     write_structure(&x, s->works);
 }
 

@@ -256,9 +256,8 @@ static int halves_of(const char *glyph)
     return *glyph == ':' || text_equal(glyph, "█") ? 3 : 0;
 }
 
-static void check_stroke_column(const struct picture *p, int x)
+static void check_stroke(const struct picture *p, struct truth t, int x)
 {
-    struct truth t = truth_at(p, &block->curve->lines.at[0], x);
     int first = -1, last = -1, n = 0;
     for (int half = 0; half < 2 * ROWS; half++) {
         if (!(halves_of(p->cells[half / 2][x]) & 1 << half % 2))
@@ -274,6 +273,11 @@ static void check_stroke_column(const struct picture *p, int x)
     ck_assert_msg(fabsl(first / 2.0L - 0.25L - least) <= 0.25L + 1e-6L,
                   "column %d: %d, not %Lg .. %Lg; %g", x, first, least, greatest, p->low);
     ck_assert(fabsl(last / 2.0L - 0.25L - greatest) <= 0.25L + 1e-6L);
+}
+
+static void check_stroke_column(const struct picture *p, int x)
+{
+    check_stroke(p, truth_at(p, &block->curve->lines.at[0], x), x);
 }
 
 START_TEST(strokes_are_right)
@@ -329,6 +333,107 @@ START_TEST(several_lines_are_right)
             }
         }
     }
+}
+END_TEST
+
+/* --- steps --- */
+
+/* By what a step is: the values that hold anywhere between the edges of the column. */
+static struct truth step_truth_at(const struct picture *p, const struct curve_line *l, int column)
+{
+    const struct curve *c = block->curve;
+    const struct curve_point *at = l->points.at;
+    double lo = c->lines.at[0].points.at[0].x, hi = array_last(&c->lines.at[0].points)->x;
+    struct truth t = {0};
+    for (size_t k = 0; k < l->points.n; k++) {
+        bool last = k + 1 == l->points.n;
+        long double from = place(at[k].x, c->x.log, lo, hi, p->columns - 1);
+        long double until = last ? from : place(at[k + 1].x, c->x.log, lo, hi, p->columns - 1);
+        long double y = place(at[k].y, c->y.log, p->low, p->high, ROWS - 1);
+        if (until < column - 0.5L || from >= column + 0.5L)
+            continue;
+        t.least = t.any ? fminl(t.least, y) : y;
+        t.greatest = t.any ? fmaxl(t.greatest, y) : y;
+        t.any = true;
+    }
+    return t;
+}
+
+/* One that only falls, from 1 to the sixth decade below it. */
+START_TEST(steps_are_right)
+{
+    struct random r = random_seed(7600 + (uint64_t)_i);
+    block->curve->x.log = _i % 2;
+    block->curve->y.log = true;
+    struct curve_line *l = curve_add_line(&report, block, "line", "o");
+    l->steps = true;
+    int n = (int)random_range(&r, 3, 30);
+    double x = random_log_uniform(&r, 1, 1e6), y = 1;
+    for (int i = 0; i < n; i++) {
+        x *= random_uniform(&r, 1.1, 3);
+        y *= random_uniform(&r, 0.65, 0.9);
+        curve_add_point(&report, l, x, i + 1 == n ? 1.0385e-6 : y);
+    }
+    for (unsigned width = 60; width <= 200; width += 13) {
+        struct picture p = draw(width, width % 2);
+        ck_assert_double_eq(p.high, 1);
+        ck_assert_double_eq_tol(p.low, 1e-6, 1e-18);
+        for (int i = 0; i < p.columns; i++)
+            check_stroke(&p, step_truth_at(&p, l, i), i);
+    }
+}
+END_TEST
+
+START_TEST(several_steps_are_right)
+{
+    struct random r = random_seed(7700 + (uint64_t)_i);
+    for (int i = 0; i < 2; i++) {
+        add_some_line(&r, 0.2385, 7.61, 0, 61.7, i ? "b" : "a");
+        block->curve->lines.at[i].steps = true;
+    }
+    struct picture p = draw(60 + (unsigned)_i, false);
+    for (int x = 0; x < p.columns; x++) {
+        struct truth a = step_truth_at(&p, &block->curve->lines.at[0], x);
+        struct truth b = step_truth_at(&p, &block->curve->lines.at[1], x);
+        for (int y = 0; y < ROWS; y++) {
+            char drawn = *p.cells[y][x];
+            ck_assert_int_eq(drawn == 'a' || drawn == 'b', holds(&a, y) || holds(&b, y));
+            ck_assert(drawn != 'a' || holds(&a, y));
+            ck_assert(drawn != 'b' || holds(&b, y));
+        }
+    }
+}
+END_TEST
+
+/* Each stretch is level or upright; the numbers are those that were given. */
+START_TEST(steps_of_a_picture)
+{
+    struct curve_line *l = curve_add_line(&report, block, "line", "o");
+    struct text html, json;
+    text_init(&html, arena);
+    text_init(&json, arena);
+    l->steps = true;
+    curve_add_point(&report, l, 0, 0.25);
+    curve_add_point(&report, l, 1, 1);
+    curve_add_point(&report, l, 3, 1);
+    report_write_html(&html, &report);
+    report_write_json(&json, &report);
+    ck_assert(json_is(text_str(&json), "blocks/0/lines/0/steps", "true"));
+    ck_assert(json_is(text_str(&json), "blocks/0/lines/0/points/1/1", "1"));
+    double x[4], y[4];
+    const char *s = strstr(text_str(&html), "<path class=\"line l0\" d=\"M");
+    s = strchr(s, 'M');
+    for (int i = 0; i < 4; i++) {
+        char *end;
+        ck_assert(*s == (i ? 'L' : 'M'));
+        x[i] = strtod(s + 1, &end);
+        y[i] = strtod(end, &end);
+        s = end;
+    }
+    ck_assert(*s == '"');
+    ck_assert(x[0] < x[1] && x[1] == x[2] && x[2] < x[3]);
+    ck_assert(y[0] == y[1] && y[1] > y[2] && y[2] == y[3]);
+    ck_assert_double_eq_tol(x[3] - x[2], 2 * (x[1] - x[0]), 0.11);
 }
 END_TEST
 
@@ -676,6 +781,9 @@ Suite *suite_report_curve(void)
     tcase_add_loop_test(t, areas_are_right, 0, 20);
     tcase_add_loop_test(t, strokes_are_right, 0, 20);
     tcase_add_loop_test(t, several_lines_are_right, 0, 20);
+    tcase_add_loop_test(t, steps_are_right, 0, 20);
+    tcase_add_loop_test(t, several_steps_are_right, 0, 20);
+    tcase_add_test(t, steps_of_a_picture);
     tcase_add_loop_test(t, ticks_are_round, 0, (int)(sizeof ticks / sizeof *ticks));
     tcase_add_loop_test(t, ticks_are_at_their_values, 0, 10);
     tcase_add_loop_test(t, y_labels_are_evenly_spaced, 0, 30);

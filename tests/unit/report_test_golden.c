@@ -30,14 +30,15 @@ static void add_summary(struct report *r)
     row_date(r, block_pair(r, b, "Date of data"), "2027-03-31");
     pair_number(r, block_pair(r, b, "Risk of all hazards"), 123456, "EUR/a", STYLE_MONEY, "risk")
         ->mark = "!";
-    pair_number(r, block_pair(r, b, "Frequency of a busbar fault"), 2.94e-3, "1/a",
-                STYLE_FREQUENCY, "H-BUS1.frequency");
+    pair_number(r, block_pair(r, b, "Frequency of a busbar fault"), 2.94e-3, "1/a", STYLE_FREQUENCY,
+                "H-BUS1.frequency");
     pair_number(r, block_pair(r, b, "Failure on demand"), 0.0123, "", STYLE_PERCENT, "p");
     static const char *const roles[] = {"Prepared", "Checked", "Approved by the head of grids"};
     report_signatures(r, "signatures", "Signatures", roles, 3);
-    report_note(r, "intro", "The figures rest on faults and tests up to the date of data. A rate "
-                            "that was learnt from two faults in nine years is not a number but a "
-                            "distribution.\n\n  ! : above the criterion, café included\n");
+    report_note(r, "intro",
+                "The figures rest on faults and tests up to the date of data. A rate "
+                "that was learnt from two faults in nine years is not a number but a "
+                "distribution.\n\n  ! : above the criterion, café included\n");
 }
 
 static void add_hazards(struct report *r)
@@ -137,6 +138,28 @@ static void add_risks(struct report *r)
     }
 }
 
+/* How likely a year costs more than so much, of four things that happen or not. */
+static void add_exceedance(struct report *r)
+{
+    struct block *b = report_curve(r, "exceedance", "How bad a year can be");
+    curve_set_x(r, b, "damage", "Damage in a year", "EUR", STYLE_MONEY)->log = true;
+    curve_set_y(r, b, "exceedance", "Probability that it is more", "", STYLE_PROBABILITY)->log =
+        true;
+    static const struct {
+        const char *name, *symbol;
+        double damages[4], above[4];
+    } lines[] = {
+        {"As it is", "t", {2385, 185000, 4.2e6, 61.7e6}, {0.61, 0.0213, 2.94e-3, 7.1e-5}},
+        {"Both options", "b", {2385, 72000, 9.1e5, 2.3e7}, {0.34, 0.0192, 1.2e-4, 1.7e-6}}};
+    for (int i = 0; i < 2; i++) {
+        struct curve_line *l = curve_add_line(r, b, lines[i].name, lines[i].symbol);
+        l->steps = true;
+        for (int k = 0; k < 4; k++)
+            curve_add_point(r, l, lines[i].damages[k], lines[i].above[k]);
+        curve_add_point(r, l, i ? 6e7 : 1.2e8, 0);
+    }
+}
+
 /* What the yearly cost would be at both ends of what is not known, widest first. */
 static void add_swings(struct report *r)
 {
@@ -224,6 +247,96 @@ static void add_spreads(struct report *r)
     }
 }
 
+/* A branch with its numbers; probability below 0: it leaves a choice. */
+static struct tree_node *add_branch(struct report *r, struct block *b, struct tree_node *parent,
+                                    enum tree_kind kind, const char *label, double probability,
+                                    double value)
+{
+    struct tree_node *n = tree_add(r, b, parent, kind, label);
+    n->has_probability = probability >= 0;
+    n->probability = n->has_probability ? probability : 0;
+    n->value = value;
+    n->reach = parent ? parent->reach * (probability >= 0 ? probability : 0) : 1;
+    return n;
+}
+
+static void take(struct tree_node *n, double reach)
+{
+    n->best = true;
+    n->reach = reach;
+}
+
+/* What follows an oil test, by how it ends. */
+static void add_survey(struct report *r, struct block *b, struct tree_node *survey)
+{
+    static const char *const ends[] = {"good", "fair, to be tested again within a year", "poor"};
+    static const double chances[] = {0.714, 0.2385, 0.0475}, values[] = {81200, -12350, -104500};
+    for (int i = 0; i < 3; i++) {
+        enum tree_kind kind = i ? TREE_CHOOSE : TREE_END;
+        struct tree_node *end = add_branch(r, b, survey, kind, ends[i], chances[i], values[i]);
+        end->probability_figure = i == 2 ? "T2-WINDING.poor" : NULL;
+        end->ends = i ? 2 : 0;
+        if (!i)
+            continue;
+        struct tree_node *wait =
+            add_branch(r, b, end, TREE_END, "wait", -1, values[i] - 41000.0 * i);
+        struct tree_node *dry = add_branch(r, b, end, TREE_END, "dry-oil", -1, values[i]);
+        dry->steps = "pay 61 kEUR; out of service for 2 week";
+        take(i == 1 ? wait : dry, end->reach);
+        wait->value += i == 1 ? 41000 : 0;
+        dry->value -= i == 1 ? 2385 : 0;
+    }
+}
+
+static void add_tree(struct report *r)
+{
+    struct block *b =
+        report_tree(r, "tree", "What to do about the winding", "EUR", STYLE_MONEY, "Worth");
+    struct tree_node *root = add_branch(
+        r, b, NULL, TREE_CHOOSE, "Is the winding of transformer 2 to be looked into?", -1, 45200);
+    root->value_figure = "D-WINDING.best";
+    struct tree_node *survey = add_branch(r, b, root, TREE_CHANCE, "survey-first", -1, 45200);
+    survey->steps = "pay 15 kEUR; wait 3 month; inspect T2-WINDING.OIL";
+    take(survey, 1);
+    add_survey(r, b, survey);
+    struct tree_node *replace = add_branch(r, b, root, TREE_CHANCE, "replace-at-once", -1, 12300);
+    replace->steps =
+        "pay 1.45 MEUR; wait 14 month for delivery; 母線 is fed by transformer 1 alone";
+    struct tree_node *late = add_branch(r, b, replace, TREE_CHOOSE, "late", 0.12, -84200);
+    late->folded = true;
+    late->ends = 12;
+    struct tree_node *time = add_branch(r, b, replace, TREE_END, "in time", 0.88, 25460);
+    time->same_as = "survey-first.poor.dry-oil";
+    add_branch(r, b, root, TREE_END, "nothing", -1, 0);
+}
+
+/* Which action is best by what is known of the oil and by the year. */
+static void add_policy(struct report *r)
+{
+    struct block *b = report_policy(r, "policy", "What to do with the winding, year by year");
+    static const char *const conditions[] = {"good", "fair, seen 1 a ago", "poor, seen 2 a ago",
+                                             "dried"};
+    policy_add_action(r, b, "Leave it as it is", true);
+    policy_add_action(r, b, "Test the oil", false);
+    policy_add_action(r, b, "Dry the oil", false);
+    policy_add_action(r, b, "Replace the winding", false);
+    for (int t = 0; t < 16; t++)
+        policy_add_time(r, b, arena_printf(r->arena, "%d", 2027 + t));
+    for (size_t i = 0; i < 4; i++)
+        policy_add_condition(r, b, conditions[i]);
+    for (size_t i = 0; i < 4; i++) {
+        for (size_t t = 0; t < 16; t++) {
+            size_t action = i == 0 ? t == 5 : i == 1 ? 1 : i == 2 ? t < 9 ? 2 : 3 : t == 15 ? 3 : 0;
+            if (i == 3 && t < 2)
+                continue;
+            double reach = i == 0            ? 1 - 0.0385 * (double)t
+                           : i == 1 && t < 3 ? 0
+                                             : 0.0123 * (double)t;
+            policy_set(r, b, i, t, action, reach, t == 5 ? "D-WINDING.policy" : NULL);
+        }
+    }
+}
+
 static struct report sample(struct arena *a)
 {
     struct report r;
@@ -235,9 +348,13 @@ static struct report sample(struct arena *a)
     add_sawtooth(&r);
     add_costs(&r);
     add_risks(&r);
+    add_exceedance(&r);
     add_swings(&r);
     add_map(&r);
     add_spreads(&r);
+    report_heading(&r, 3, "In stages");
+    add_tree(&r);
+    add_policy(&r);
     return r;
 }
 
@@ -257,10 +374,12 @@ static void compare(struct arena *a, const char *name, const char *s, size_t n)
     ck_assert_msg(same == n && same == size, "%s differs in line %zu: %.60s", name, line, s + same);
 }
 
-static const struct { unsigned width; bool ascii, colour; } formats[] = {
-    {60, false, false}, {60, true, false},   {80, false, false},  {80, true, false},
-    {120, false, false}, {120, true, false}, {200, false, false}, {200, true, false},
-    {80, false, true}};
+static const struct {
+    unsigned width;
+    bool ascii, colour;
+} formats[] = {{60, false, false},  {60, true, false},   {80, false, false},
+               {80, true, false},   {120, false, false}, {120, true, false},
+               {200, false, false}, {200, true, false},  {80, false, true}};
 
 START_TEST(as_text)
 {

@@ -138,6 +138,7 @@ void add_some_curve(struct random *r, struct report *report)
     for (size_t i = random_index(r, 4); i-- > 0;) {
         struct curve_line *l = curve_add_line(report, b, some_text(r), some_text(r));
         double x = drawable(some_number(r));
+        l->steps = random_index(r, 3) == 0;
         for (size_t k = random_index(r, 20); k-- > 0; x = fmax(x, drawable(some_number(r))))
             curve_add_point(report, l, x, drawable(some_number(r)));
     }
@@ -208,10 +209,60 @@ void add_some_spreads(struct random *r, struct report *report)
     }
 }
 
+static void set_node(struct random *r, struct tree_node *n)
+{
+    n->steps = random_index(r, 2) ? some_text(r) : NULL;
+    n->has_probability = random_index(r, 2);
+    n->probability = random_uniform(r, 0, 1);
+    n->probability_figure = some_text(r);
+    n->value = drawable(some_number(r));
+    n->reach = random_index(r, 3) ? random_uniform(r, 0, 1) : 0;
+    n->best = random_index(r, 2);
+    n->folded = random_index(r, 5) == 0;
+    n->ends = random_index(r, 30);
+    n->same_as = random_index(r, 8) ? NULL : some_text(r);
+}
+
+/* Each node below any of those before it, which are few: so trees are deep or wide. */
+void add_some_tree(struct random *r, struct report *report)
+{
+    struct tree_node *nodes[60];
+    struct block *b =
+        report_tree(report, "tree", some_text(r), some_text(r), some_style(r), some_text(r));
+    size_t n = random_index(r, 60), near = random_index(r, 60) + 1;
+    for (size_t i = 0; i < n; i++) {
+        size_t back = random_index(r, i < near ? i + 1 : near);
+        struct tree_node *parent = i ? nodes[back < i ? i - 1 - back : 0] : NULL;
+        nodes[i] = tree_add(report, b, parent, (enum tree_kind)random_index(r, 3), some_text(r));
+        set_node(r, nodes[i]);
+    }
+}
+
+void add_some_policy(struct random *r, struct report *report)
+{
+    struct block *b = report_policy(report, "policy", some_text(r));
+    size_t actions = random_index(r, 70), times = random_index(r, 40), rows = random_index(r, 8);
+    for (size_t i = 0; i < actions; i++)
+        policy_add_action(report, b, some_text(r), random_index(r, 4) == 0);
+    for (size_t t = 0; t < times; t++)
+        policy_add_time(report, b,
+                        random_index(r, 3) ? arena_printf(report->arena, "%zu", 2027 + t)
+                                           : some_text(r));
+    for (size_t i = 0; i < rows; i++)
+        policy_add_condition(report, b, some_text(r));
+    for (size_t i = 0; i < rows * times; i++) {
+        bool none = actions == 0 || random_index(r, 5) == 0;
+        if (random_index(r, 6))
+            policy_set(report, b, i / times, i % times,
+                       none ? POLICY_NONE : random_index(r, random_index(r, actions) + 1),
+                       random_index(r, 3) ? random_uniform(r, 0, 1) : 0, some_text(r));
+    }
+}
+
 void fill_at_random(struct random *r, struct report *report)
 {
     for (size_t i = random_index(r, 6) + 1; i-- > 0;) {
-        switch (random_index(r, 9)) {
+        switch (random_index(r, 11)) {
         case 0: report_heading(report, (int)random_index(r, 3) + 1, some_text(r)); break;
         case 1:
             report_note(report, "note", "%s %s\n  %s\n\n%s", some_text(r), some_text(r),
@@ -224,6 +275,8 @@ void fill_at_random(struct random *r, struct report *report)
         case 6: add_some_swings(r, report); break;
         case 7: add_some_map(r, report); break;
         case 8: add_some_spreads(r, report); break;
+        case 9: add_some_tree(r, report); break;
+        case 10: add_some_policy(r, report); break;
         }
     }
 }

@@ -16,6 +16,8 @@ void add_some_curve(struct random *r, struct report *report);
 void add_some_swings(struct random *r, struct report *report);
 void add_some_map(struct random *r, struct report *report);
 void add_some_spreads(struct random *r, struct report *report);
+void add_some_tree(struct random *r, struct report *report);
+void add_some_policy(struct random *r, struct report *report);
 /* One to six blocks. */
 void fill_at_random(struct random *r, struct report *report);
 
