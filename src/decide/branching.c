@@ -189,7 +189,8 @@ static ohmen_status find_states(const struct found *x, struct weighing *w, size_
             const struct state *s = o->data;
             bool named = is_inspected(x, o->id) || is_seen(x->decision, o->id) || is_renewed(x, s);
             bool reaches = false;
-            if (!s->is.n || chosen[i] || (round == 0 && !named) || (round == 1 && !state_evolves(s)))
+            if (!s->is.n || chosen[i] || (round == 0 && !named) ||
+                (round == 1 && !state_evolves(s)))
                 continue;
             status = reached_by_state(x, w, o, named, &reaches, e);
             chosen[i] = named || reaches;
@@ -223,11 +224,12 @@ static ohmen_status compile_today(struct figures *f, struct weighing *w, ohmen_e
 
 /* --- alternatives --- */
 
-static void add_alternative(struct figures *f, struct weighing *w, const char *name)
+static void add_alternative(struct figures *f, struct weighing *w, const char *name,
+                            const char *label)
 {
     struct alternative *alt = array_push(f->arena, &w->alternatives);
     const char **self = NEW(f->arena, const char *);
-    *self = name;
+    *self = label;
     alternative_clear(alt);
     alt->name = name;
     alt->n = 1;
@@ -255,7 +257,7 @@ static void find_alternatives(struct figures *f, struct branching *b)
     const struct point *root = &b->points.at[0];
     const struct point *p = root->kind == POINT_SEE ? &b->points.at[root->branches[0].to] : root;
     if (b->repeats)
-        add_alternative(f, w, "policy");
+        add_alternative(f, w, POLICY, POLICY);
     for (size_t k = 0; k < p->n; k++) {
         const struct way *x = &p->branches[k];
         bool nothing = !b->repeats && !*x->steps && b->points.at[x->to].kind == POINT_END;
@@ -267,8 +269,9 @@ static void find_alternatives(struct figures *f, struct branching *b)
                 has = has || text_equal(other->branches[j].label, x->label);
             everywhere = everywhere && has;
         }
+        const char *name = b->repeats ? arena_printf(f->arena, "%s-first", x->label) : x->label;
         if (!nothing && everywhere)
-            add_alternative(f, w, x->label);
+            add_alternative(f, w, name, x->label);
     }
 }
 
@@ -296,14 +299,15 @@ static ohmen_status prepare(struct figures *f, struct weighing *w, struct branch
                             ohmen_error *e)
 {
     struct found x = {.f = f, .decision = w->decision};
-    const struct object **states = NEW_ARRAY(f->arena, f->base->of[KIND_STATE].n,
-                                             const struct object *);
+    const struct object **states =
+        NEW_ARRAY(f->arena, f->base->of[KIND_STATE].n, const struct object *);
     size_t n = 0;
     find_in_rows(&x, &w->decision->choose);
     find_in_rows(&x, &w->decision->subtrees);
     ohmen_status status = add_nothing(f, w, e);
     if (status == OHMEN_OK)
-        status = compile_references(f, w->alternatives.at[0].variant, model_find(f->base, w->id), e);
+        status =
+            compile_references(f, w->alternatives.at[0].variant, model_find(f->base, w->id), e);
     if (status == OHMEN_OK)
         add_reached(f, w, w->alternatives.at[0].variant);
     if (status == OHMEN_OK)

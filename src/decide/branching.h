@@ -90,7 +90,7 @@ struct point {
 struct survey_worth {
     const struct alternative *of, *other; /* begins with the reading; the best of the others */
     const char *test;                     /* "T2-WINDING.OIL" */
-    figure_id price; /* present value of what is paid before the reading */
+    figure_id price;                      /* present value of what is paid before the reading */
     figure_id worth; /* what the reading is worth at most: it pays up to this price */
 };
 
@@ -108,9 +108,13 @@ struct branching {
     const struct rollback *laid_out; /* points, then their branches in order, then nothing */
 };
 
+/* The alternative of a choice that comes again: the best branch each time. */
+#define POLICY "policy"
+
 /* Compiles a decision that is a tree: fills the weighing as weigh_compile does, with one
- * alternative a branch of the first choice beside doing nothing; of a choice that comes again with
- * "policy" and one for each branch at the start, followed by the policy. Figures that have no
+ * alternative a branch of the first choice beside doing nothing; of a choice that comes again
+ * POLICY, and "renew-first" for each branch "renew": taken at the start, and then the policy. The
+ * only option of an alternative is its branch's label. Figures that have no
  * meaning for a tree stay FIGURE_NONE. OHMEN_COMPUTE with the path where the tree cannot be
  * followed. */
 ohmen_status branching_compile(struct figures *f, struct weighing *w, ohmen_error *e);

@@ -159,18 +159,19 @@ static node_id *move_on(struct telling *t, const struct way *b, node_id *belief)
 }
 
 /* Bayes' rule: what is believed at the beginning of a branch; its probability in *probability. */
-static node_id *told(struct telling *t, const struct point *p, const struct way *b,
-                     node_id *belief, node_id *probability)
+static node_id *told(struct telling *t, const struct point *p, const struct way *b, node_id *belief,
+                     node_id *probability)
 {
     size_t n = hidden_in(t), count = 0;
-    node_id *joint = NEW_ARRAY(t->f->arena, n, node_id), *terms = NEW_ARRAY(t->f->arena, n, node_id);
+    node_id *joint = NEW_ARRAY(t->f->arena, n, node_id),
+            *terms = NEW_ARRAY(t->f->arena, n, node_id);
     (void)p;
     for (size_t h = 0; h < n; h++) {
         joint[h] = NODE_NONE;
         if (belief[h] == NODE_NONE || b->likelihood[h] == 0)
             continue;
-        joint[h] = b->likelihood[h] == 1 ? belief[h]
-                                         : times(t, belief[h], number(t, b->likelihood[h]));
+        joint[h] =
+            b->likelihood[h] == 1 ? belief[h] : times(t, belief[h], number(t, b->likelihood[h]));
         terms[count++] = joint[h];
     }
     *probability = sum(t, count, terms);
@@ -190,7 +191,7 @@ static figure_id add(struct telling *t, enum property p, const char *q1, const c
 
 static const char *path_name(const struct telling *t, const char *path)
 {
-    return *path ? path : t->b->repeats ? "policy" : "start";
+    return *path ? path : t->b->repeats ? POLICY : "start";
 }
 
 /* The mean over what is believed of cost and damage to come; a figure for each hidden state too. */
@@ -206,9 +207,7 @@ static figure_id add_to_come(struct telling *t, const char *path, const struct b
         if (c == NODE_NONE && d == NODE_NONE)
             both = compile_const(section(t), 0, dim_money, NULL);
         else
-            both = c == NODE_NONE   ? d
-                   : d == NODE_NONE ? c
-                                    : graph_op2(graph_of(t), OP_ADD, c, d);
+            both = c == NODE_NONE ? d : d == NODE_NONE ? c : graph_op2(graph_of(t), OP_ADD, c, d);
         if (n > 1)
             add(t, PROPERTY_TO_COME, path_name(t, path), t->b->worlds.hidden.names[h], both);
         terms[count++] = n > 1 ? times(t, belief[h], both) : both;
@@ -237,11 +236,12 @@ static void tell_branch(struct telling *t, size_t point, size_t k)
         add_beliefs(t, b->path, belief);
     bool taken = p->kind != POINT_CHOOSE || p->best == k;
     if (t->reach[point] != NODE_NONE && taken) {
-        node_id reach = probability == NODE_NONE ? t->reach[point]
-                                                 : times(t, t->reach[point], probability);
+        node_id reach =
+            probability == NODE_NONE ? t->reach[point] : times(t, t->reach[point], probability);
         node_id *to = &t->reach[b->to];
         *to = *to == NODE_NONE ? reach : graph_op2(graph_of(t), OP_ADD, *to, reach);
-        b->reach_figure = add(t, PROPERTY_REACH, b->path, NULL, reach);
+        if (p->kind != POINT_SEE) /* the choice behind it has one */
+            b->reach_figure = add(t, PROPERTY_REACH, b->path, NULL, reach);
     }
     if (p->kind != POINT_SEE) {
         struct by_state cost = behind_branch(t, &t->cost_to_come, b);
@@ -259,8 +259,7 @@ static void tell_point(struct telling *t, size_t point)
         return;
     if (p->is_stage || point == 0) {
         p->value_figure = add_to_come(t, p->path, behind_point(t, &t->cost_to_come, point),
-                                      behind_point(t, &t->damage_to_come, point),
-                                      t->belief[point]);
+                                      behind_point(t, &t->damage_to_come, point), t->belief[point]);
         p->reach_figure = add(t, PROPERTY_REACH, path_name(t, p->path), NULL, t->reach[point]);
     }
     for (size_t k = 0; k < p->n; k++)
@@ -319,11 +318,11 @@ static struct by_state behind_alternative(struct telling *t, struct alphas *x,
     struct by_state all = {NEW_ARRAY(t->f->arena, n, node_id)};
     if (i == 0)
         return branching_back(&t->r, t->b->nothing, x->of, NULL);
-    if (t->b->repeats && text_equal(alt->name, "policy"))
+    if (t->b->repeats && text_equal(alt->name, POLICY))
         return *behind_point(t, x, 0);
     for (size_t h = 0; h < n; h++) {
         const struct point *p = first_choice(t->b, h);
-        const struct way *b = p ? labelled(p, alt->name) : NULL;
+        const struct way *b = p ? labelled(p, alt->options[0]) : NULL;
         all.at[h] = b ? behind_branch(t, x, b).at[h] : NODE_NONE;
     }
     return all;
@@ -367,10 +366,8 @@ static void add_money(struct telling *t, size_t i)
     node_id now = figure_at(t->f, nothing->present_damage)->node;
     node_id benefit = graph_op2(g, OP_SUBTRACT, now, damage);
     alt->benefit = add(t, PROPERTY_BENEFIT, name, NULL, benefit);
-    alt->net =
-        add(t, PROPERTY_NET, name, NULL, graph_op2(g, OP_SUBTRACT, benefit, cost));
-    alt->ratio =
-        add(t, PROPERTY_RATIO, name, NULL, ratio_of_means(section(t), benefit, cost));
+    alt->net = add(t, PROPERTY_NET, name, NULL, graph_op2(g, OP_SUBTRACT, benefit, cost));
+    alt->ratio = add(t, PROPERTY_RATIO, name, NULL, ratio_of_means(section(t), benefit, cost));
 }
 
 /* What is avoided of a measure, beside the money of the chosen perspective. */
@@ -405,8 +402,8 @@ static void add_supply_and_people(struct telling *t)
     struct alphas of_time = alphas_of(t, &time);
     node_id **deaths = NEW_ARRAY(t->f->arena, w->alternatives.n, node_id *);
     for (size_t i = 1; i < w->alternatives.n; i++) {
-        w->alternatives.at[i].present_time =
-            add(t, PROPERTY_PRESENT_TIME, w->alternatives.at[i].name, NULL, avoided(t, &of_time, i));
+        w->alternatives.at[i].present_time = add(
+            t, PROPERTY_PRESENT_TIME, w->alternatives.at[i].name, NULL, avoided(t, &of_time, i));
         deaths[i] = NEW_ARRAY(t->f->arena, groups->n + 1, node_id);
     }
     for (size_t k = 0; k < groups->n; k++) {
@@ -427,7 +424,8 @@ static double total_of(const struct branching *b, size_t i)
 {
     if (i == 0)
         return b->nothing->value;
-    const struct way *begins = labelled(&b->points.at[0], b->weighing->alternatives.at[i].name);
+    const struct way *begins =
+        labelled(&b->points.at[0], b->weighing->alternatives.at[i].options[0]);
     return begins ? begins->value : b->points.at[0].value;
 }
 
@@ -457,7 +455,7 @@ static void add_survey(struct telling *t, size_t i)
 {
     struct weighing *w = t->b->weighing;
     const struct alternative *alt = &w->alternatives.at[i];
-    const struct way *b = labelled(&t->b->points.at[0], alt->name);
+    const struct way *b = labelled(&t->b->points.at[0], alt->options[0]);
     if (!b || t->b->repeats || t->b->points.at[b->to].kind != POINT_READ)
         return;
     struct graph *g = graph_of(t);
@@ -471,8 +469,7 @@ static void add_survey(struct telling *t, size_t i)
     s->other = &w->alternatives.at[best_but(t->b, i)];
     s->test = t->b->points.at[b->to].test;
     s->price = add(t, PROPERTY_READING_PRICE, alt->name, NULL, price);
-    s->worth =
-        add(t, PROPERTY_READING_WORTH, alt->name, NULL, graph_op2(g, OP_ADD, lead, price));
+    s->worth = add(t, PROPERTY_READING_WORTH, alt->name, NULL, graph_op2(g, OP_ADD, lead, price));
 }
 
 /* --- the whole --- */
@@ -483,7 +480,8 @@ ohmen_status branching_figures(struct branching *b, struct figures *f, ohmen_err
     struct telling t = {.f = f, .b = b};
     t.damage = (struct measure){PROPERTY_RISK, NULL, dim_money_rate, dim_money};
     t.r = (struct rolling){.b = b, .worth = {.f = f, .w = w}};
-    compiled_begin(f, w->alternatives.at[0].variant, model_find(f->base, w->id), w->id, section(&t));
+    compiled_begin(f, w->alternatives.at[0].variant, model_find(f->base, w->id), w->id,
+                   section(&t));
     money_begin(&t.r.worth.money, f, section(&t), w->horizon);
     t.cost_to_come = alphas_of(&t, NULL);
     t.damage_to_come = alphas_of(&t, &t.damage);

@@ -128,8 +128,7 @@ static struct move *add_move(struct growing *g, struct way *b, enum move_kind ki
 }
 
 /* The option sets states: what is believed moves there. */
-static void reset_states(struct growing *g, struct way *b, struct standing *s,
-                         const char *option)
+static void reset_states(struct growing *g, struct way *b, struct standing *s, const char *option)
 {
     const struct hidden *h = &g->b->worlds.hidden;
     size_t *map = NEW_ARRAY(g->f->arena, h->n, size_t);
@@ -271,8 +270,8 @@ static const char *quantity_words(struct growing *g, const struct quantity *q)
 }
 
 /* An option that is applied again replaces what it brought before. */
-static ohmen_status apply(struct growing *g, struct way *b, struct standing *s,
-                          const char *option, ohmen_error *e)
+static ohmen_status apply(struct growing *g, struct way *b, struct standing *s, const char *option,
+                          ohmen_error *e)
 {
     const struct applied *before = applied_in(&s->done, option);
     struct life life = life_later(g->f, option, s->time);
@@ -415,8 +414,8 @@ static ohmen_status grow_branch(struct growing *g, const struct point *from, str
     struct text words;
     struct standing s = {from->time, from->done, b->belief, b->path};
     if (++g->n_branches > BRANCHING_MOST)
-        return error_set(e, OHMEN_COMPUTE, "\"%s\" has more than %d branches",
-                         g->b->weighing->id, BRANCHING_MOST);
+        return error_set(e, OHMEN_COMPUTE, "\"%s\" has more than %d branches", g->b->weighing->id,
+                         BRANCHING_MOST);
     text_init(&words, g->f->arena);
     b->value_figure = b->probability_figure = b->reach_figure = FIGURE_NONE;
     ohmen_status status = follow(g, b, &s, steps, &words, e);
@@ -427,7 +426,7 @@ static ohmen_status grow_branch(struct growing *g, const struct point *from, str
 /* --- points --- */
 
 static struct way *add_branch(struct growing *g, struct point *p, const char *label,
-                                 const double *belief, double probability)
+                              const double *belief, double probability)
 {
     struct way *b = &p->branches[p->n++];
     *b = (struct way){.label = label, .belief = belief, .probability = probability};
@@ -544,8 +543,8 @@ static size_t place_point(struct growing *g, enum point_kind kind, const void *p
     if (at)
         return (size_t)at - 1;
     struct point *p = array_push(g->f->arena, &g->b->points);
-    *p = (struct point){.kind = kind, .path = s->path, .time = s->time, .done = s->done,
-                        .belief = s->belief};
+    *p = (struct point){
+        .kind = kind, .path = s->path, .time = s->time, .done = s->done, .belief = s->belief};
     p->value_figure = p->reach_figure = FIGURE_NONE;
     strmap_set(g->f->arena, &g->points, key, (void *)g->b->points.n);
     return g->b->points.n - 1;
@@ -575,8 +574,8 @@ static ohmen_status grow_point(struct growing *g, enum point_kind kind, const st
     if (kind == POINT_READ)
         add_readings(g, &p, step);
     for (size_t i = 0; status == OHMEN_OK && i < p.n; i++)
-        status = grow_branch(g, &p, &p.branches[i],
-                             steps_behind(kind, step, p.branches[i].label), e);
+        status =
+            grow_branch(g, &p, &p.branches[i], steps_behind(kind, step, p.branches[i].label), e);
     g->b->points.at[number] = p;
     close_point(g, number);
     return status;
@@ -660,7 +659,7 @@ static const char *state_words(struct growing *g, const struct standing *s, cons
             text_printf(&t, " of %s",
                         horizon_label(g->f->arena, g->f->base->settings, (uint32_t)x->later));
     }
-    return t.n ? text_str(&t) : "as it is";
+    return text_str(&t);
 }
 
 static size_t stage_at(const struct growing *g, double time)
@@ -757,8 +756,8 @@ static ohmen_status grow_choice(struct growing *g, const struct standing *at, co
 {
     bool known;
     struct standing s = *at;
-    size_t number = *out = place_point(g, POINT_CHOOSE, &g->b->weighing->decision->choose, &s,
-                                       &known);
+    size_t number = *out =
+        place_point(g, POINT_CHOOSE, &g->b->weighing->decision->choose, &s, &known);
     if (known)
         return OHMEN_OK;
     ohmen_status status = count_beliefs(g, &s, e);
@@ -770,6 +769,8 @@ static ohmen_status grow_choice(struct growing *g, const struct standing *at, co
     p.is_stage = true;
     p.state = state_words(g, &s, seen);
     p.path = own_path(g, g->b->stages[stage_at(g, s.time)], p.state);
+    if (!*p.state)
+        p.state = "as it is";
     add_possible(g, &p, &s);
     if (p.n == 0)
         return fail_at(g, p.path, e, "no branch is possible any more; add one that does nothing");
@@ -789,8 +790,7 @@ static ohmen_status grow_sight(struct growing *g, const struct standing *at, siz
                                ohmen_error *e)
 {
     bool known;
-    size_t number = *out =
-        place_point(g, POINT_SEE, &g->b->weighing->decision->sees, at, &known);
+    size_t number = *out = place_point(g, POINT_SEE, &g->b->weighing->decision->sees, at, &known);
     if (known)
         return OHMEN_OK;
     struct point p = g->b->points.at[number];
@@ -805,6 +805,8 @@ static ohmen_status grow_sight(struct growing *g, const struct standing *at, siz
         b->steps = "";
         b->value_figure = b->probability_figure = b->reach_figure = FIGURE_NONE;
         status = grow_choice(g, &s, b->label, &b->to, e);
+        if (status == OHMEN_OK)
+            b->path = g->b->points.at[b->to].path;
     }
     g->b->points.at[number] = p;
     close_point(g, number);
@@ -827,8 +829,11 @@ static ohmen_status grow_nothing(struct growing *g, ohmen_error *e)
     const struct point *root = &g->b->points.at[0];
     struct way *b = NEW(g->f->arena, struct way);
     struct standing s = {0, {{0}, {0}}, root->belief, "do-nothing"};
-    *b = (struct way){.label = "do-nothing", .path = "do-nothing", .steps = "",
-                         .belief = root->belief, .probability = 1};
+    *b = (struct way){.label = "do-nothing",
+                      .path = "do-nothing",
+                      .steps = "",
+                      .belief = root->belief,
+                      .probability = 1};
     b->value_figure = b->probability_figure = b->reach_figure = FIGURE_NONE;
     g->b->nothing = b;
     ohmen_status status = pass(g, b, &s, g->horizon, e);
@@ -846,7 +851,7 @@ static ohmen_status name_stages(struct growing *g, ohmen_error *e)
     double n = ceil(g->horizon / b->every - SAME_TIME);
     if (n > STAGES_MOST)
         return error_set(e, OHMEN_COMPUTE,
-                         "\"%s\": the choice comes again %.0f times, at most %d are possible", 
+                         "\"%s\": the choice comes again %.0f times, at most %d are possible",
                          b->weighing->id, n, STAGES_MOST);
     b->n_stages = (size_t)n;
     b->stages = NEW_ARRAY(g->f->arena, b->n_stages, const char *);

@@ -239,8 +239,7 @@ static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
             x->amount = expected(f, x, b->worlds.hidden.n, &all[at++]);
         }
     if (status == OHMEN_OK)
-        b->nothing->amount =
-            expected(f, b->nothing, b->worlds.hidden.n, &all[at]);
+        b->nothing->amount = expected(f, b->nothing, b->worlds.hidden.n, &all[at]);
     return status;
 }
 

@@ -45,9 +45,8 @@ static void add_first(struct costing *c, node_id invest)
     day on = c->option->invest->on;
     double year = on == DAY_NONE ? 0 : timeline_year(s, on);
     if (c->life.later > 0)
-        year = fmax(floor((on == DAY_NONE ? 0 : horizon_years(s, on)) + c->life.later +
-                          SAME_INSTANT),
-                    0);
+        year = fmax(
+            floor((on == DAY_NONE ? 0 : horizon_years(s, on)) + c->life.later + SAME_INSTANT), 0);
     if (year < c->m->horizon)
         add_at(c, invest, year);
 }
@@ -83,8 +82,7 @@ static node_id node_of(const struct figures *f, const struct compiled *option, e
 }
 
 /* The option's figures are there already. */
-static struct payments paid_once(const struct money *m, const struct compiled *option,
-                                 double later)
+static struct payments paid_once(const struct money *m, const struct compiled *option, double later)
 {
     struct costing c = {m, option->object->data, life_later(m->f, option->id, later), {0}};
     node_id invest = node_of(m->f, option, PROPERTY_INVEST);

@@ -96,8 +96,8 @@ static ohmen_status with_changes(struct figures *f, const struct path *p, double
     ohmen_status status = OHMEN_OK;
     for (size_t i = 0; status == OHMEN_OK && i < p->changed.n; i++)
         if (p->changed.at[i].from <= at)
-            status = figures_variant_with(f, *v, p->changed.at[i].name, p->changed.at[i].change, v,
-                                          e);
+            status =
+                figures_variant_with(f, *v, p->changed.at[i].name, p->changed.at[i].change, v, e);
     return status;
 }
 

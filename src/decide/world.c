@@ -5,7 +5,6 @@
 
 #include "figure/consequences.h"
 #include "figure/states.h"
-#include "/tmp/chain_stub.h"
 
 /* --- hidden states --- */
 
@@ -122,8 +121,7 @@ static ohmen_status variant_in(struct worlds *x, const struct variant *v, size_t
     return status;
 }
 
-static ohmen_status compile_hidden(struct worlds *x, struct world *w, size_t hidden,
-                                   ohmen_error *e)
+static ohmen_status compile_hidden(struct worlds *x, struct world *w, size_t hidden, ohmen_error *e)
 {
     const struct variant *v;
     size_t n = x->w->hazards.n;
@@ -258,8 +256,7 @@ static ohmen_status compile_flows(struct worlds *x, struct world *w, ohmen_error
     return OHMEN_OK;
 }
 
-ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **out,
-                      ohmen_error *e)
+ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **out, ohmen_error *e)
 {
     const char *key = arena_printf(x->f->arena, "%p", (const void *)v);
     struct world *w = strmap_get(&x->by_variant, key);
@@ -285,8 +282,8 @@ ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **
 
 /* --- passages --- */
 
-static node_id chain(struct worlds *x, const struct world *w, struct chain *c,
-                     const node_id *rates, size_t from, size_t to, bool mean)
+static node_id chain(struct worlds *x, const struct world *w, struct chain *c, const node_id *rates,
+                     size_t from, size_t to, bool mean)
 {
     (void)w;
     c->start = (uint32_t)from;
@@ -309,8 +306,11 @@ static struct passage *compile_passage(struct worlds *x, const struct world *w, 
         froms[i] = w->flows.at[i].from;
         tos[i] = w->flows.at[i].to;
     }
-    struct chain c = {.n_states = (uint32_t)n, .n_flows = (uint32_t)n_flows, .from = froms,
-                      .to = tos, .years = years};
+    struct chain c = {.n_states = (uint32_t)n,
+                      .n_flows = (uint32_t)n_flows,
+                      .from = froms,
+                      .to = tos,
+                      .years = years};
     compiled_begin_part(x->f, w->variant, model_find(x->f->base, x->w->id), x->w->id,
                         arena_printf(a, "passage of %g a", years), &b);
     for (size_t i = 0; i < n; i++)

@@ -20,7 +20,7 @@
 #include "decide/avoided.h"
 
 /* Hidden states of one tree. */
-#define HIDDEN_MOST 256
+#define HIDDEN_MOST CHAIN_MOST_STATES
 
 struct hidden {
     size_t n_states;

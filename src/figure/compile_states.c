@@ -105,11 +105,11 @@ static void add_probabilities(struct building *b, const struct object *o)
             continue;
         double p = expr_constant(q->expr);
         node_id whether = compile_whether(b, left > 0 ? fmin(p / left, 1) : 0);
-        node_id share = none_before == NODE_NONE ? whether
-                                                 : graph_op2(g, OP_MULTIPLY, none_before, whether);
+        node_id share =
+            none_before == NODE_NONE ? whether : graph_op2(g, OP_MULTIPLY, none_before, whether);
         node_id not = graph_op1(g, OP_COMPLEMENT, whether);
         add_share(b, o, i, share, quantity_reads(b->figures, q));
-        none_before = none_before == NODE_NONE ? not : graph_op2(g, OP_MULTIPLY, none_before, not);
+        none_before = none_before == NODE_NONE ? not : graph_op2(g, OP_MULTIPLY, none_before, not );
         left -= p;
     }
     if (none_before == NODE_NONE)
@@ -127,8 +127,8 @@ const char *states_reset(const struct figures *f, const struct variant *v, const
                              : c->sort == CHANGE_OPTION ? c->name
                                                         : NULL;
         const char *sets = option ? state_renewed(s, option) : NULL;
-        double at = option ? life_of(f, option).begin + (c->sort == CHANGE_RENEWAL ? c->moved : 0)
-                           : 0;
+        double at =
+            option ? life_of(f, option).begin + (c->sort == CHANGE_RENEWAL ? c->moved : 0) : 0;
         if (sets && (!to || at >= *when)) {
             to = sets;
             *when = at;

@@ -348,9 +348,10 @@ static ohmen_status period_named(struct figures *f, const char *name, size_t n,
     }
     *out = (struct change){.sort = CHANGE_RENEWAL, .name = name, .option = option};
     out->moved = life_moved(f->arena, f, option, colon + 1);
-    return out->moved > 0 ? OHMEN_OK
-                        : error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is not renewed in \"%s\"",
-                                    option, colon + 1);
+    return out->moved > 0
+               ? OHMEN_OK
+               : error_set(e, OHMEN_UNKNOWN, "the option \"%s\" is not renewed in \"%s\"", option,
+                           colon + 1);
 }
 
 static ohmen_status option_named(struct figures *f, size_t n, const char *const *names, size_t i,
@@ -410,7 +411,8 @@ ohmen_status variant_in_state(struct figures *f, const struct variant *base,
 {
     const struct state *s = state->data;
     struct model_change m = model_state_change(f->arena, state, value);
-    struct change c = {CHANGE_STATE, m.name, state->id, state_values(s)->keys[value], m.node, NULL, 0};
+    struct change c = {CHANGE_STATE, m.name, state->id, state_values(s)->keys[value],
+                       m.node,       NULL,   0};
     return variant_and(f, base, &c, out, e);
 }
 

@@ -14,8 +14,8 @@ bool check_has_row(const struct rows *rows, const char *key)
     return false;
 }
 
-void check_named(struct checking *c, const struct rows *rows, const char *key,
-                       struct place at, const char *what)
+void check_named(struct checking *c, const struct rows *rows, const char *key, struct place at,
+                 const char *what)
 {
     if (check_has_row(rows, key))
         return;
@@ -123,7 +123,7 @@ static void check_failures(struct checking *c, const struct state *s, const stru
             const struct pair *row = &failures->pairs[i].value->pairs[k];
             check_named(c, &h->outcomes, to->keys[k], row->place, "outcome");
             check_named(c, state_values(s), ((const char *const *)to->at)[k], row->value->place,
-                       "state");
+                        "state");
         }
     }
 }
@@ -160,7 +160,7 @@ void check_state(struct checking *c, const struct object *o)
     const struct node *renewed = node_get(o->node, "renewed-by");
     for (size_t i = 0; i < s->renewed_by.n; i++)
         check_named(c, states, ((const char *const *)s->renewed_by.at)[i],
-                   renewed->pairs[i].value->place, "state");
+                    renewed->pairs[i].value->place, "state");
     const struct node *tests = node_get(o->node, "tests");
     for (size_t i = 0; i < s->tests.n; i++)
         check_survey(c, states, ROW(struct reading_test, s->tests, i), tests->pairs[i].value);

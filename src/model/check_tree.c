@@ -103,7 +103,8 @@ static void check_branches(struct tree_check *t, const struct node *node, const 
 {
     const struct node *branches = node_get(node, key);
     if (branches && branches->n == 0)
-        diag_add(t->c->diags, branches->place, "\"%s\" has no branches: at least one is needed", key);
+        diag_add(t->c->diags, branches->place, "\"%s\" has no branches: at least one is needed",
+                 key);
 }
 
 static void check_step(struct tree_check *t, const struct step *s, const struct node *node,

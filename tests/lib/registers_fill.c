@@ -290,8 +290,7 @@ static void put_failures(struct generator *g, struct node *state, const char *ha
 
 static void add_states(struct generator *g)
 {
-    static const char *const skip[] = {"when",       "becomes", "failures",
-                                       "renewed-by", "tests",   NULL};
+    static const char *const skip[] = {"when", "becomes", "failures", "renewed-by", "tests", NULL};
     bool varies = random_chance(g, 3);
     g->winding_is_unknown = !varies;
     struct node *m = make_pair(g, varies ? "varies" : "is", shares(g));
@@ -368,8 +367,7 @@ static struct node *plain_step(struct generator *g)
                          make_scalar(g, arena_printf(g->arena, "%u d", random_draw(g, 1, 30))));
     case 2: /* none twice */
         if (g->applied < g->ids[KIND_OPTION].n)
-            return make_pair(g, "apply",
-                             make_scalar(g, g->ids[KIND_OPTION].at[g->applied++]));
+            return make_pair(g, "apply", make_scalar(g, g->ids[KIND_OPTION].at[g->applied++]));
         return make_pair(g, "pay", make_scalar(g, "3 kEUR"));
     default: return make_pair(g, "change", small_change(g));
     }
@@ -388,8 +386,7 @@ static struct node *steps(struct generator *g, unsigned depth, bool may_go)
 /* A decision by a tree, beside those by options. */
 static void add_trees(struct generator *g)
 {
-    static const char *const skip[] = {"options", "choose", "subtrees",
-                                       "every",   "sees",   NULL};
+    static const char *const skip[] = {"options", "choose", "subtrees", "every", "sees", NULL};
     struct node *m = make_map(g), *sees = make_list(g);
     g->applied = 0;
     put_node(g, m, "choose", alternatives(g, 3, true));

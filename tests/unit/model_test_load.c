@@ -198,10 +198,10 @@ END_TEST
 START_TEST(certainty_through_names)
 {
     const char *yaml = "values: {sure: 0.4, unsure: {median: 0.1, error-factor: 2, at-most: 1}}\n"
-                       "states: {S: {is: {p: %s, q: rest}}}\n";
+                       "states: {S: {varies: {p: %s, q: rest}}}\n";
     struct sheet s = sheet_new();
     fine(&s, arena_printf(s.arena, yaml, "sure / 2"));
-    wrong(arena_printf(s.arena, yaml, "unsure"), 2, 22, "a name in it is uncertain");
+    wrong(arena_printf(s.arena, yaml, "unsure"), 2, 26, "a name in it is uncertain");
 }
 END_TEST
 
