@@ -48,7 +48,7 @@ struct world {
     const struct variant *variant;
     const struct compiled **hazards; /* [k * n_hazards + h]; NULL: there is none */
     ARRAY(struct flow_of_states) flows;
-    const struct compiled *unit; /* section of the rates; NULL without flows */
+    const struct compiled *unit; /* the last section of its rates and passages; NULL without flows */
     ARRAY(struct passage *) passages;
 };
 
@@ -56,7 +56,7 @@ struct worlds {
     struct figures *f;
     struct weighing *w; /* its hazards are known */
     struct hidden hidden;
-    struct strmap by_variant;
+    struct strmap by_variant; /* in the order in which they were made */
 };
 
 /* Which value a followed state has in a hidden state. */
