@@ -3,6 +3,8 @@
  * figures. */
 #include "decide/world.h"
 
+#include <math.h>
+
 #include "figure/consequences.h"
 #include "figure/states.h"
 
@@ -359,5 +361,11 @@ node_id world_measure(struct worth *at, const struct worlds *x, const struct wor
                       size_t hidden, const struct measure *m, double from, double to)
 {
     size_t n = x->w->hazards.n;
-    return measure_over(at, m, n, &w->hazards[hidden * n], from, to);
+    const struct compiled *const *hazards = &w->hazards[hidden * n];
+    double year = floor(from);
+    if (from == year)
+        return measure_over(at, m, n, hazards, from, to);
+    node_id before = measure_over(at, m, n, hazards, year, from);
+    node_id all = measure_over(at, m, n, hazards, year, to);
+    return all == NODE_NONE ? NODE_NONE : graph_op2(at->f->graph, OP_SUBTRACT, all, before);
 }

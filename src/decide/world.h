@@ -77,7 +77,9 @@ ohmen_status world_passage(struct worlds *x, struct world *w, double years,
                            const struct passage **out, ohmen_error *e);
 
 /* What a measure is worth now that is done in one hidden state of a world from one time to another;
- * NODE_NONE where nothing is done. In the open section of `at`. */
+ * NODE_NONE where nothing is done. In the open section of `at`. A time that begins within a year is
+ * worth what the time from the beginning of that year is worth less what lies before: so that it
+ * does not matter where time is cut. */
 node_id world_measure(struct worth *at, const struct worlds *x, const struct world *w,
                       size_t hidden, const struct measure *m, double from, double to);
 
