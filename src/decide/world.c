@@ -343,14 +343,20 @@ static ohmen_status evaluate_passage(struct worlds *x, struct passage *p, ohmen_
     return status;
 }
 
+const struct passage *world_passage_known(const struct world *w, double years)
+{
+    for (size_t i = 0; i < w->passages.n; i++)
+        if (w->passages.at[i]->years == years)
+            return w->passages.at[i];
+    return NULL;
+}
+
 ohmen_status world_passage(struct worlds *x, struct world *w, double years,
                            const struct passage **out, ohmen_error *e)
 {
-    for (size_t i = 0; i < w->passages.n; i++)
-        if (w->passages.at[i]->years == years) {
-            *out = w->passages.at[i];
-            return OHMEN_OK;
-        }
+    *out = world_passage_known(w, years);
+    if (*out)
+        return OHMEN_OK;
     struct passage *p = compile_passage(x, w, years);
     *array_push(x->f->arena, &w->passages) = p;
     *out = p;

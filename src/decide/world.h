@@ -48,7 +48,8 @@ struct world {
     const struct variant *variant;
     const struct compiled **hazards; /* [k * n_hazards + h]; NULL: there is none */
     ARRAY(struct flow_of_states) flows;
-    const struct compiled *unit; /* the last section of its rates and passages; NULL without flows */
+    const struct compiled
+        *unit; /* the last section of its rates and passages; NULL without flows */
     ARRAY(struct passage *) passages;
 };
 
@@ -75,6 +76,9 @@ ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **
 /* Made once for each length; has values. */
 ohmen_status world_passage(struct worlds *x, struct world *w, double years,
                            const struct passage **out, ohmen_error *e);
+
+/* One that was made; NULL: it was not. */
+const struct passage *world_passage_known(const struct world *w, double years);
 
 /* What a measure is worth now that is done in one hidden state of a world from one time to another;
  * NODE_NONE where nothing is done. In the open section of `at`. A time that begins within a year is
