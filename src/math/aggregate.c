@@ -223,6 +223,24 @@ static void collect(struct arena *a, const struct compounding *c, struct aggrega
     }
 }
 
+static void add_weighted(size_t n, double weight, const double *p, double *to)
+{
+    for (size_t j = 0; j < n; j++)
+        to[j] += weight * p[j];
+}
+
+void aggregate_mix(struct arena *a, size_t n, const double *probability, const struct aggregate *of,
+                   struct aggregate *out)
+{
+    size_t points = of[0].n;
+    double *p[2] = {NEW_ARRAY(a, points, double), NEW_ARRAY(a, points, double)};
+    for (size_t i = 0; i < n; i++) {
+        add_weighted(points, probability[i], of[i].low.p, p[0]);
+        add_weighted(points, probability[i], of[i].high.p, p[1]);
+    }
+    aggregate_of(a, points, p, out);
+}
+
 /* ---- room ---- */
 
 static void find_tilts(struct arena *a, struct compounding *c)

@@ -78,6 +78,10 @@ struct aggregate {
 void aggregate_find(struct arena *a, const struct aggregate_plan *plan, aggregate_sources *sources,
                     void *ctx, struct aggregate *all, struct aggregate *of_sets);
 
+/* One of several sums on the same points, by their probabilities, which add up to 1. */
+void aggregate_mix(struct arena *a, size_t n, const double *probability, const struct aggregate *of,
+                   struct aggregate *out);
+
 /* The least point j with P(S <= j) >= p; n where there is none. */
 size_t aggregate_quantile(const struct aggregate *x, const struct aggregate_end *end, double p);
 
