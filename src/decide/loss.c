@@ -12,9 +12,9 @@
 #include "decide/loss_samples.h"
 #include "math/aggregate.h"
 
-enum { LOG2_ROUGH = 10, LOG2_FINE = 13, MOST_TRIES = 8, CURVE_POINTS = 48 };
+enum { LOG2_ROUGH = 10, LOG2_ONE = 15, LOG2_MANY = 13, MOST_TRIES = 8, CURVE_POINTS = 48 };
 /* The lattice reaches to where the damage is exceeded with this probability, and a little on. */
-static const double BEYOND_LATTICE = 1e-4, A_LITTLE = 1.05;
+static const double BEYOND_LATTICE = 5e-4, A_LITTLE = 1.1;
 /* How much wider the next lattice is where the last was too narrow. */
 static const double WIDER = 8;
 /* A lattice is narrowed while it is so many times as wide as it must be. */
@@ -48,34 +48,43 @@ struct finding {
     struct aggregate all, *sets;
     struct ends means;
     struct ends *set_means;
+    size_t points;           /* samples of a set that are taken: all, or one */
+    struct ends *path_means; /* of the path at hand, by sample */
 };
+
+/* Samples of rough lattices are the first ones of each set. */
+static size_t sample_of(const struct finding *x, size_t sample)
+{
+    return x->points == x->world->points ? sample : sample * x->world->points;
+}
 
 static void add_sources(void *ctx, size_t worker, size_t sample, struct intensity *to)
 {
     const struct finding *x = ctx;
+    struct ends *means = &x->path_means[sample];
+    size_t s = sample_of(x, sample);
     (void)worker;
+    *means = (struct ends){{0, 0}};
     for (size_t k = 0; k < x->path->sources->n; k++) {
-        const struct loss_source *s = &x->path->sources->at[k];
-        double expected = loss_expected(x->world, s, sample);
+        const struct loss_source *source = &x->path->sources->at[k];
+        double expected = loss_expected(x->world, source, s), of_one[2];
         to->expected += expected;
-        loss_damage_add(loss_world_damage(x->world, s->damage), &x->lattice, sample, expected,
-                        to->down, to->up);
+        loss_damage_add(loss_world_damage(x->world, source->damage), &x->lattice, s, expected,
+                        to->down, to->up, of_one);
+        for (int end = 0; end < 2; end++)
+            means->of[end] += expected * of_one[end];
     }
 }
 
-/* The means of both ends of a path, over all samples and by set. */
+/* The means of both ends of a path, over all samples and by set, in their order. */
 static void add_means(struct finding *x)
 {
-    const struct loss_world *w = x->world;
-    for (size_t s = 0; s < w->sets * w->points; s++)
-        for (size_t k = 0; k < x->path->sources->n; k++) {
-            const struct loss_source *source = &x->path->sources->at[k];
-            double n = loss_expected(w, source, s) * x->path->probability, ends[2];
-            loss_damage_means(loss_world_damage(w, source->damage), &x->lattice, s, ends);
-            for (int end = 0; end < 2; end++) {
-                x->means.of[end] += n * ends[end] / (double)(w->sets * w->points);
-                x->set_means[s / w->points].of[end] += n * ends[end] / (double)w->points;
-            }
+    size_t n = x->world->sets * x->points;
+    for (size_t s = 0; s < n; s++)
+        for (int end = 0; end < 2; end++) {
+            double mean = x->path_means[s].of[end] * x->path->probability;
+            x->means.of[end] += mean / (double)n;
+            x->set_means[s / x->points].of[end] += mean / (double)x->points;
         }
 }
 
@@ -93,7 +102,7 @@ static void distribute(struct finding *x)
     size_t n = x->of->n_paths;
     struct aggregate_plan plan = {.log2_points = x->log2_points,
                                   .sets = w->sets,
-                                  .points = w->points,
+                                  .points = x->points,
                                   .threads = w->plan.threads,
                                   .isa = w->plan.isa};
     struct aggregate *all = NEW_ARRAY(x->arena, n, struct aggregate);
@@ -103,10 +112,14 @@ static void distribute(struct finding *x)
     x->lattice.n = (size_t)1 << x->log2_points;
     place_all(x);
     x->sets = NEW_ARRAY(x->arena, w->sets, struct aggregate);
+    x->path_means = NEW_ARRAY(x->arena, w->sets * x->points, struct ends);
+    x->set_means = NEW_ARRAY(x->arena, w->sets, struct ends);
+    x->means = (struct ends){{0, 0}};
     for (size_t p = 0; p < n; p++) {
         x->path = &x->of->paths[p];
         probability[p] = x->path->probability;
         aggregate_find(x->arena, &plan, add_sources, x, &all[p], sets + p * w->sets);
+        add_means(x);
     }
     aggregate_mix(x->arena, n, probability, all, &x->all);
     for (size_t s = 0; s < w->sets; s++) {
@@ -118,16 +131,16 @@ static void distribute(struct finding *x)
 
 /* ---- which lattice ---- */
 
-/* 1, 2 or 5 times a power of ten, at least x: amounts in round numbers lie at its points. */
+/* A round number, at least x: amounts in round numbers lie at its points. */
 static double round_step(double x)
 {
-    static const double round[] = {1, 2, 5};
+    static const double round[] = {1, 1.25, 2, 2.5, 4, 5, 8};
     double unit = 1;
     while (unit > x)
         unit /= 10;
     while (unit * 10 <= x)
         unit *= 10;
-    for (int i = 0; i < 3; i++)
+    for (size_t i = 0; i < sizeof round / sizeof *round; i++)
         if (unit * round[i] >= x)
             return unit * round[i];
     return unit * 10;
@@ -161,8 +174,10 @@ static double reach_of(const struct finding *x)
 static void find_step(struct finding *x)
 {
     struct arena *outer = x->arena;
+    unsigned log2_points = x->world->n_cases == 1 ? LOG2_ONE : LOG2_MANY;
     double reach = fmax(first_reach(x), 1);
     x->log2_points = LOG2_ROUGH;
+    x->points = 1;
     for (int i = 0; i < MOST_TRIES; i++) {
         double wide = reach;
         x->arena = arena_child(outer);
@@ -176,8 +191,9 @@ static void find_step(struct finding *x)
             reach = wide * WIDER;
     }
     x->arena = outer;
-    x->log2_points = LOG2_FINE;
-    x->lattice.step = round_step(reach / (1 << LOG2_FINE));
+    x->log2_points = log2_points;
+    x->points = x->world->points;
+    x->lattice.step = round_step(reach / (1 << log2_points));
 }
 
 /* ---- what is read off ---- */
@@ -284,11 +300,6 @@ void loss_find_case(struct loss_world *w, struct arena *a, const struct loss_cas
     if (has_sources(of)) {
         find_step(&x);
         distribute(&x);
-        x.set_means = NEW_ARRAY(scratch, w->sets, struct ends);
-        for (size_t p = 0; p < of->n_paths; p++) {
-            x.path = &of->paths[p];
-            add_means(&x);
-        }
         read_all(a, &x, out);
     } else {
         nothing_of(a, out);

@@ -23,9 +23,10 @@
  *
  * The mean of the damage is a figure of the graph, OWNER.horizon-damage, and none of the sample.
  *
- * Names of results: OWNER.no-damage[CASE], OWNER.exceeded-10[CASE] (-5, -1): damage that is exceeded
- * with so many per cent; OWNER.worst-5[CASE] (-1): mean damage in the worst so many per cent
- * (expected shortfall). OWNER is a decision and CASE an alternative, or `register` and `today`. */
+ * Names of results: OWNER.no-damage[CASE], OWNER.exceeded-10[CASE] (-5, -1): damage that is
+ * exceeded with so many per cent; OWNER.worst-5[CASE] (-1): mean damage in the worst so many per
+ * cent (expected shortfall). OWNER is a decision and CASE an alternative, or `register` and
+ * `today`. */
 #ifndef DECIDE_LOSS_H
 #define DECIDE_LOSS_H
 
@@ -107,6 +108,9 @@ ohmen_status loss_world_new(struct figures *f, struct arena *a, size_t n,
                             struct loss_world **out, ohmen_error *e);
 /* Without values that mean anything to others; NULL: nothing is unknown. */
 const struct sampling *loss_world_sample(const struct loss_world *w);
+/* How often a source is expected over its time, and its mean damage, as means over the samples. */
+double loss_source_expected(const struct loss_world *w, const struct loss_source *s);
+double loss_source_damage(const struct loss_world *w, const struct loss_source *s);
 /* The distribution of one of the cases. Lives in `a`. */
 void loss_find_case(struct loss_world *w, struct arena *a, const struct loss_case *of,
                     struct loss_result *out);

@@ -443,8 +443,9 @@ static struct severity_place part_place(const struct loss_damage *d, const struc
     double x = times * d->parts.low[i] + shift, y = times * d->parts.high[i] + shift;
     if (times == 0)
         x = y = shift;
-    return (struct severity_place){severity_place_of(l, fmin(x, y)).down,
-                                   severity_place_of(l, fmax(x, y)).up};
+    if (x > y)
+        return (struct severity_place){severity_place_of(l, y).down, severity_place_of(l, x).up};
+    return (struct severity_place){severity_place_of(l, x).down, severity_place_of(l, y).up};
 }
 
 static size_t n_parts(const struct loss_damage *d)
@@ -466,36 +467,28 @@ static void put(const struct lattice *l, struct severity_place at, double weight
         up[at.up] += weight;
 }
 
-void loss_damage_add(const struct loss_damage *d, const struct lattice *l, size_t sample,
-                     double weight, double *down, double *up)
+static void add_once(const struct lattice *l, struct severity_place at, double weight, double p,
+                     double *down, double *up, struct tally *t)
 {
-    size_t s = d->n == 1 ? 0 : sample;
-    if (d->form == LOSS_AMOUNT) {
-        put(l, severity_place_of(l, d->shift[s]), weight, down, up);
-        return;
-    }
-    if (d->is_placed) {
-        severity_add(l, &d->placed, weight, moved(d, l, s), down, up);
-        return;
-    }
-    for (size_t i = 0; i < n_parts(d); i++)
-        put(l, part_place(d, l, s, i), weight * part_weight(d, i), down, up);
+    put(l, at, weight * p, down, up);
+    tally_add(t, l, at, p);
 }
 
-void loss_damage_means(const struct loss_damage *d, const struct lattice *l, size_t sample,
-                       double out[2])
+void loss_damage_add(const struct loss_damage *d, const struct lattice *l, size_t sample,
+                     double weight, double *down, double *up, double means[2])
 {
     size_t s = d->n == 1 ? 0 : sample;
     struct tally t = {0};
     if (d->is_placed) {
         struct severity_place by = moved(d, l, s);
-        out[0] = d->placed_mean[0] + (double)by.down;
-        out[1] = d->placed_mean[1] + (double)by.up;
+        severity_add(l, &d->placed, weight, by, down, up);
+        means[0] = d->placed_mean[0] + (double)by.down;
+        means[1] = d->placed_mean[1] + (double)by.up;
         return;
     }
     if (d->form == LOSS_AMOUNT)
-        tally_add(&t, l, severity_place_of(l, d->shift[s]), 1);
+        add_once(l, severity_place_of(l, d->shift[s]), weight, 1, down, up, &t);
     for (size_t i = 0; d->form != LOSS_AMOUNT && i < n_parts(d); i++)
-        tally_add(&t, l, part_place(d, l, s, i), part_weight(d, i));
-    tally_means(&t, l, loss_damage_mean(d, s) / l->step, out);
+        add_once(l, part_place(d, l, s, i), weight, part_weight(d, i), down, up, &t);
+    tally_means(&t, l, loss_damage_mean(d, s) / l->step, means);
 }

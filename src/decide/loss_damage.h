@@ -65,13 +65,12 @@ ohmen_status loss_damage_sample(struct figures *f, struct arena *a,
 
 /* Brings it to a lattice, in `a`. */
 void loss_damage_place(struct arena *a, const struct lattice *l, struct loss_damage *d);
-/* Adds it so many times in a sample; allocates nothing. */
+/* Adds it so many times in a sample; `means` gets the means of an occurrence rounded down and up, in
+ * steps. Allocates nothing. */
 void loss_damage_add(const struct loss_damage *d, const struct lattice *l, size_t sample,
-                     double weight, double *down, double *up);
-/* Its mean in a sample, in money; and rounded down and up, in steps. */
+                     double weight, double *down, double *up, double means[2]);
+/* Its mean in a sample, in money. */
 double loss_damage_mean(const struct loss_damage *d, size_t sample);
-void loss_damage_means(const struct loss_damage *d, const struct lattice *l, size_t sample,
-                       double out[2]);
 /* The damage below which an occurrence stays with all but a probability of 1e-3, in a sample. */
 double loss_damage_high(const struct loss_damage *d, size_t sample);
 /* May it be below 0, with more than a vanishing probability? */

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Samples of rates and damages (loss_samples.h). Owns nothing beyond the arenas that it is given. */
+/* Samples of rates and damages (loss_samples.h). Owns nothing beyond the arenas it is given. */
 #include "decide/loss_samples.h"
 
 #include <math.h>
@@ -223,6 +223,23 @@ ohmen_status loss_world_new(struct figures *f, struct arena *a, size_t n,
 const struct sampling *loss_world_sample(const struct loss_world *w)
 {
     return w->certain ? NULL : &w->sample;
+}
+
+double loss_source_expected(const struct loss_world *w, const struct loss_source *s)
+{
+    double sum = 0;
+    for (size_t i = 0; i < w->sets * w->points; i++)
+        sum += loss_expected(w, s, i);
+    return sum / (double)(w->sets * w->points);
+}
+
+double loss_source_damage(const struct loss_world *w, const struct loss_source *s)
+{
+    const struct loss_damage *d = loss_world_damage(w, s->damage);
+    double sum = 0;
+    for (size_t i = 0; i < d->n; i++)
+        sum += loss_damage_mean(d, i);
+    return sum / (double)d->n;
 }
 
 /* ---- damages ---- */

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The sources of damage of hazards, as nodes: how often each outcome occurs, and what it costs. A
- * part of the decision or of the register, made when somebody asks. Owns nothing beyond the arena of
- * the figures. */
+ * part of the decision or of the register, made when somebody asks. Owns nothing beyond the arena
+ * of the figures. */
 #include <math.h>
 
 #include "decide/avoided.h"
@@ -297,13 +297,29 @@ static struct weighing *as_weighing(struct figures *f, size_t n,
     return w;
 }
 
+/* What a hazard costs over the horizon is a figure of its own; and their sum. */
+static node_id expected_by_hazard(struct figures *f, struct collecting *c, size_t n,
+                                  const struct compiled *const *hazards)
+{
+    struct measure m = damage_measure();
+    struct weighing *all = c->worth.w;
+    node_id *nodes = NEW_ARRAY(f->arena, n, node_id);
+    for (size_t i = 0; i < n; i++) {
+        c->worth.w = as_weighing(f, 1, &hazards[i]);
+        nodes[i] = measure_now(&c->worth, &m);
+        compiled_add(&c->worth.b, PROPERTY_HORIZON_DAMAGE, hazards[i]->id, NULL, nodes[i], NULL,
+                     NULL);
+    }
+    c->worth.w = all;
+    return worth_sum(&c->worth, n, nodes, dim_money);
+}
+
 ohmen_status loss_of_register(struct figures *f, size_t n, const struct compiled *const *hazards,
                               const struct loss_case **out, ohmen_error *e)
 {
     const struct compiled *owner = figures_settings(f);
     struct building under = {.figures = f, .variant = owner->variant};
     const struct compiled *known = compiled_part(&under, owner->id, PART_LOSS);
-    struct measure m = damage_measure();
     (void)e;
     if (known) {
         *out = known->exports;
@@ -317,7 +333,7 @@ ohmen_status loss_of_register(struct figures *f, size_t n, const struct compiled
         add_hazard(&c, hazards[i], 0, c.worth.w->horizon);
     *one = (struct loss_case){LOSS_TODAY, 1, only_path(f->arena, sources), FIGURE_NONE};
     one->expected = compiled_add(&c.worth.b, PROPERTY_HORIZON_DAMAGE, NULL, NULL,
-                                 measure_now(&c.worth, &m), NULL, NULL);
+                                 expected_by_hazard(f, &c, n, hazards), NULL, NULL);
     end(&c, owner, one);
     *out = one;
     return OHMEN_OK;

@@ -17,13 +17,21 @@ static bool has_atoms(const struct dist *d)
     return d->shape == DIST_DISCRETE;
 }
 
+/* Without functions of the C library: this is done for every amount of every sample. */
 struct severity_place severity_place_of(const struct lattice *l, double amount)
 {
-    double x = amount > 0 ? amount / l->step : 0, near = round(x), last = (double)l->n;
-    double down = floor(x), up = ceil(x);
-    if (fabs(x - near) <= AT_POINT * fmax(x, 1))
-        down = up = near;
-    return (struct severity_place){(size_t)fmin(down, last), (size_t)fmin(up, last)};
+    double x = amount / l->step, near = AT_POINT * (x > 1 ? x : 1);
+    if (!(x > near))
+        return (struct severity_place){0, 0};
+    if (x >= (double)l->n)
+        return (struct severity_place){l->n, l->n};
+    size_t down = (size_t)x;
+    double part = x - (double)down;
+    if (part <= near)
+        return (struct severity_place){down, down};
+    if (part >= 1 - near)
+        return (struct severity_place){down + 1, down + 1};
+    return (struct severity_place){down, down + 1};
 }
 
 /* ---- whole lattices ---- */
