@@ -2,14 +2,14 @@
 /* How bad it may get: the distribution of all damage over the horizon, as the chosen perspective
  * bears it, summed and not discounted.
  *
- * Each outcome of each hazard with damage is a source: it occurs a Poisson number of times, expected
- * by its frequency in each year (in each operating state by its share of time, under the variant
- * of each stretch), and each occurrence does an amount of damage of its own, independent of the
- * others: what `varies` is drawn anew, and an input that varies in two items of one occurrence has
- * one value in both. The sum is compound Poisson (math/aggregate.h). What is unknown is the same
- * for all of the horizon and for all cases: the result is the mean of the distributions over samples
- * of it, whose spread between sets gives a standard error. As in the graph, a frequency stands at
- * its mean over what varies.
+ * Each outcome of each hazard with damage is a source: it occurs a Poisson number of times,
+ * expected by its frequency in each year (in each operating state by its share of time, under the
+ * variant of each stretch), and each occurrence does an amount of damage of its own, independent of
+ * the others: what `varies` is drawn anew, and an input that varies in two items of one occurrence
+ * has one value in both. The sum is compound Poisson (math/aggregate.h). What is unknown is the
+ * same for all of the horizon and for all cases: the result is the mean of the distributions over
+ * samples of it, whose spread between sets gives a standard error. As in the graph, a frequency
+ * stands at its mean over what varies.
  *
  * The damage of an occurrence is
  *   an amount     where nothing varies in it;

@@ -65,8 +65,8 @@ ohmen_status loss_damage_sample(struct figures *f, struct arena *a,
 
 /* Brings it to a lattice, in `a`. */
 void loss_damage_place(struct arena *a, const struct lattice *l, struct loss_damage *d);
-/* Adds it so many times in a sample; `means` gets the means of an occurrence rounded down and up, in
- * steps. Allocates nothing. */
+/* Adds it so many times in a sample; `means` gets the means of an occurrence rounded down and up,
+ * in steps. Allocates nothing. */
 void loss_damage_add(const struct loss_damage *d, const struct lattice *l, size_t sample,
                      double weight, double *down, double *up, double means[2]);
 /* Its mean in a sample, in money. */

@@ -246,10 +246,13 @@ void aggregate_mix(struct arena *a, size_t n, const double *probability, const s
 static void find_tilts(struct arena *a, struct compounding *c)
 {
     double *tilt = NEW_ARRAY(a, c->n, double), *back = NEW_ARRAY(a, c->n, double);
+    const struct lanes_functions *lanes = lanes_functions(c->plan->isa);
     for (size_t j = 0; j < c->n; j++) {
-        tilt[j] = math_exp(-TILT * (double)j / (double)c->length);
-        back[j] = math_exp(TILT * (double)j / (double)c->length);
+        back[j] = TILT * (double)j / (double)c->length;
+        tilt[j] = -back[j];
     }
+    lanes->exp(c->n, tilt, tilt);
+    lanes->exp(c->n, back, back);
     c->tilt = tilt;
     c->back = back;
 }

@@ -4,9 +4,9 @@
  *     aggregate LOG2
  *
  * Both ends of a sum on 2^LOG2 points, of one sample: by aggregate_find whole, and by 64 samples in
- * 16 sets, a sample. Beside it one transform forward and one back of twice as many points, with
- * their tables made beforehand, since a sum over samples needs them once. RUNS times, in turn, in
- * time that the thread has worked. Owns nothing. */
+ * 16 sets, a sample. Beside it one transform forward and one back of twice as many points, alone
+ * and with their table of sines, which a sum over samples needs once. RUNS times, in turn, in time
+ * that the thread has worked. Owns nothing. */
 #include <stdio.h>
 #include <stdlib.h>
 
@@ -56,6 +56,16 @@ static double time_of_bare(const struct bare *b)
     return bench_worked() - begin;
 }
 
+static double time_of_table(unsigned log2)
+{
+    struct arena *a = arena_new(NULL);
+    double begin = bench_worked();
+    fft_new(a, log2 + 1);
+    double time = bench_worked() - begin;
+    arena_free(a);
+    return time;
+}
+
 static double time_of_forward(const struct bare *b)
 {
     double begin = bench_worked();
@@ -70,19 +80,22 @@ static void measure(struct arena *a, unsigned log2)
     struct source s = {.lattice = {30. / (double)n, n}};
     struct bare b = {fft_new(a, log2 + 1), NEW_ARRAY(a, 4 * n, double),
                      NEW_ARRAY(a, 4 * n, double)};
-    double whole[RUNS], many[RUNS], bare[RUNS], forward[RUNS];
+    double whole[RUNS], many[RUNS], bare[RUNS], forward[RUNS], table[RUNS];
     s.severity = severity_of_dist(a, &s.lattice, &gamma, 1, 0);
     b.x[2] = 1;
     for (int run = 0; run < RUNS; run++) {
         whole[run] = time_of(&s, log2, 1, 1);
         many[run] = time_of(&s, log2, SETS, POINTS) / (SETS * POINTS);
         bare[run] = time_of_bare(&b);
+        table[run] = time_of_table(log2);
         forward[run] = time_of_forward(&b);
     }
     double both = bench_median(bare), one = bench_median(forward);
     double once = bench_median(whole), each = bench_median(many);
-    printf("%zu points: %.2f ms; bare transforms %.2f ms: %.2f times\n", n, once, both,
-           once / both);
+    double tables = bench_median(table);
+    printf("%zu points: %.2f ms; bare transforms %.2f ms: %.2f times; with their table %.2f ms: "
+           "%.2f times\n",
+           n, once, both, once / both, both + tables, once / (both + tables));
     printf("a sample of %d: %.2f ms; bare transform %.2f ms: %.2f times\n", SETS * POINTS, each,
            one, each / one);
 }
