@@ -208,6 +208,10 @@ ohmen_status ohmen_weigh(ohmen_register *r, const ohmen_query *q, const char *de
  * swings. OHMEN_UNKNOWN with the nearest name for one that moves nothing in the decision. */
 ohmen_status ohmen_sensitivity(ohmen_register *r, const ohmen_query *q, const char *decision,
                                const char *x, const char *y, ohmen_report **out, ohmen_error *e);
+/* How bad it may get: the distribution of all damage over the horizon, of the register as it is
+ * (decision NULL) or of each alternative of a decision. OHMEN_USAGE for a query with a site. */
+ohmen_status ohmen_damage(ohmen_register *r, const ohmen_query *q, const char *decision,
+                          ohmen_report **out, ohmen_error *e);
 /* The memo of one decision, to be attached to a request for money. */
 ohmen_status ohmen_memo(ohmen_register *r, const ohmen_query *q, const char *decision,
                         ohmen_report **out, ohmen_error *e);

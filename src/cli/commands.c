@@ -127,6 +127,19 @@ const struct command commands[] = {
              "chapter of the report.",
      .example = "ohmen -r skerry.ohmen people --width 80",
      .run = command_people},
+    {"damage",
+     JOB_RISK,
+     {"DECISION", 0, 1, "each of its alternatives; the register as it is if left out"},
+     .options = READING | OPTION_BIT(OPTION_SEED) | OPTION_BIT(OPTION_THREADS) |
+                OPTION_BIT(OPTION_KERNELS),
+     .brief = "how bad it may get: damage over the horizon",
+     .text = "Prints what all damage over the horizon may add up to, for the register as it is or "
+             "for each alternative of a decision: the probability of none, the mean, the damage "
+             "that is exceeded with 10, 5 and 1 %, the mean of the worst 5 and 1 %, and the "
+             "probability that an amount is exceeded as a curve. Damage is summed, not "
+             "discounted. It is a chapter of the report, and a part of a weighing and a memo.",
+     .example = "ohmen -r skerry.ohmen damage --width 80",
+     .run = command_damage},
     {"list",
      JOB_RISK,
      {"KIND", 1, 1, "a section of the documents, such as elements, schemes, hazards or options"},

@@ -59,6 +59,7 @@ ohmen_status command_hazards(const struct call *call, ohmen_error *e);
 ohmen_status command_protection(const struct call *call, ohmen_error *e);
 ohmen_status command_supply(const struct call *call, ohmen_error *e);
 ohmen_status command_people(const struct call *call, ohmen_error *e);
+ohmen_status command_damage(const struct call *call, ohmen_error *e);
 ohmen_status command_list(const struct call *call, ohmen_error *e);
 ohmen_status command_show(const struct call *call, ohmen_error *e);
 ohmen_status command_grid(const struct call *call, ohmen_error *e);

@@ -177,6 +177,13 @@ static ohmen_status make_sensitivity(ohmen_register *r, const struct args *args,
                              out, e);
 }
 
+static ohmen_status make_damage(ohmen_register *r, const struct args *args, ohmen_report **out,
+                                ohmen_error *e)
+{
+    ohmen_query query = reading_query(args);
+    return ohmen_damage(r, &query, operand(args), out, e);
+}
+
 static ohmen_status make_memo(ohmen_register *r, const struct args *args, ohmen_report **out,
                               ohmen_error *e)
 {
@@ -254,6 +261,11 @@ ohmen_status command_grid(const struct call *call, ohmen_error *e)
 ohmen_status command_report(const struct call *call, ohmen_error *e)
 {
     return read_and_print(call, make_report, e);
+}
+
+ohmen_status command_damage(const struct call *call, ohmen_error *e)
+{
+    return read_and_print(call, make_damage, e);
 }
 
 ohmen_status command_weigh(const struct call *call, ohmen_error *e)

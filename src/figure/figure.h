@@ -90,6 +90,8 @@
     X(RUNNING, "running", "running cost of an option per year")                                    \
     X(RESIDUAL, "residual", "what an option is worth at the end of the horizon")                   \
     X(DISCOUNT, "discount", "interest per year")                                                   \
+    X(HORIZON_DAMAGE, "horizon-damage",                                                            \
+      "expected damage over the horizon, summed and not discounted")                               \
     X(PRESENT_DAMAGE, "present-damage", "present value of the damage over the horizon")            \
     X(PRESENT_COST, "present-cost", "present value of investments and running cost")               \
     X(ANNUAL_COST, "equivalent-annual-cost", "the same cost each year of the horizon")             \

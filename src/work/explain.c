@@ -3,6 +3,7 @@
  * worked out from figures and is none of the graph: values at which a decision turns, what it
  * leans on, swings, elasticities, and how sure it is. */
 #include "decide/interval.h"
+#include "work/loss.h"
 #include "work/spreads.h"
 
 struct explaining {
@@ -250,6 +251,19 @@ static ohmen_status explain_sure(struct job *j, const struct explain_request *q,
     return OHMEN_OK;
 }
 
+static ohmen_status explain_loss(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct loss_value value;
+    ohmen_status status = loss_value_find(j, q->figure, &value, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct consumed c = loss_consumed(j, &value);
+    part_loss_head(j, &value);
+    derive(j, q, &c);
+    part_loss_method(j, &value);
+    return OHMEN_OK;
+}
+
 /* What is worked out from figures and is none of the graph, by the form of its name. */
 static const struct worked_out {
     bool (*is_named)(const char *name);
@@ -257,7 +271,7 @@ static const struct worked_out {
 } worked_out[] = {
     {turn_is_named, explain_turn},   {lean_is_named, explain_lean},
     {swing_is_named, explain_swing}, {elasticity_is_named, explain_elasticity},
-    {sure_is_named, explain_sure},
+    {sure_is_named, explain_sure},   {loss_is_named, explain_loss},
 };
 
 static const struct worked_out *worked_out_named(const char *name)
@@ -296,6 +310,8 @@ static ohmen_status run_explain(struct job *j, void *ctx, ohmen_error *e)
         status = spread_check(j, q->figure, e);
     if (status == OHMEN_OK && is_point)
         status = spread_prepare(j, figure, e);
+    if (status == OHMEN_OK)
+        status = loss_prepare(j, figure, e);
     if (status == OHMEN_OK)
         status = find_figure(j, figure, &id, &over_cycles, e);
     if (status == OHMEN_OK && is_point)

@@ -446,6 +446,8 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     part_together(j, w);
     part_customers_and_people(j, w);
     part_how_sure(&m);
+    report_heading(j->report, 2, "How bad it may get");
+    part_loss(j, w);
     report_heading(j->report, 2, "What happens");
     part_endings(j, w);
     part_weighed_hazards(j, w);

@@ -217,6 +217,15 @@ static void chapters_of_effects(struct job *j, const struct whole *w)
     }
 }
 
+/* Of the register as a whole: at one site it would be another sum under the same name. */
+static void chapter_loss(struct job *j, const struct whole *w)
+{
+    if (j->query.site || w->hazards.n == 0)
+        return;
+    report_heading(j->report, 2, "How bad it may get");
+    part_loss_register(j, &w->hazards);
+}
+
 static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
 {
     struct whole w = {0};
@@ -232,6 +241,7 @@ static ohmen_status run_report(struct job *j, void *ctx, ohmen_error *e)
     chapters_of_effects(j, &w);
     report_heading(j->report, 2, "How sure the figures are");
     part_spreads(j, &w.spreads);
+    chapter_loss(j, &w);
     report_heading(j->report, 2, "What protection hinges on");
     part_protection(j, &w.protection, 3);
     part_decisions(j, &w);

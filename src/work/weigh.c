@@ -310,6 +310,7 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
     }
     part_weighing(j, w);
     part_turn(j, w);
+    part_loss(j, w);
     part_weighing_grid(j, w);
     part_conventions(j);
     part_unused(j);

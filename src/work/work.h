@@ -69,8 +69,8 @@ struct job {
         size_t batches, points; /* once it was interrupted: what was asked for */
     } sampled;
     /* By decision, once they were asked for: struct turns (turn.c), struct known_sure (sure.c),
-     * struct known_swings (swings.c). */
-    struct strmap turns, sures, swings;
+     * struct known_swings (swings.c), struct known_loss (loss.c, and of the register). */
+    struct strmap turns, sures, swings, losses;
     struct ohmen_report *out;
     struct report *report; /* &out->report */
     bool interrupted;      /* the sampling, by who was asked whether to stop */
@@ -220,6 +220,11 @@ void part_sure_moves(struct job *j, const struct weighing *w);
 void part_sure_head(struct job *j, const struct sure_value *v);
 void part_sure_method(struct job *j, const struct sure_value *v);
 struct consumed sure_consumed(struct job *j, const struct sure_value *v);
+
+/* How bad it may get (loss.c): of each alternative of a weighing, which is ranked, and of hazards
+ * as they are: sentences, a table, a curve. figures_evaluate has been called. */
+void part_loss(struct job *j, const struct weighing *w);
+void part_loss_register(struct job *j, const struct hazards *h);
 
 /* The alternative whose worth is looked at: the best one; where that is to do nothing the best
  * option, NULL where there is none (swings.c). */

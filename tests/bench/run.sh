@@ -24,6 +24,7 @@ trap 'exit 130' INT TERM
 "$build/tests/bench/averages" "$work/skerry.ohmen"
 "$build/tests/bench/protection" 10000 "$work"
 "$build/tests/bench/lanes" 1000000
+"$build/tests/bench/aggregate" 16
 "$build/tests/bench/tape" 1000 10240
 python3 "$source/tests/bench/numpy_model.py" "$build/tests/bench/tape" 50 16384
 "$build/tests/bench/draws"

@@ -47,6 +47,8 @@ protection --csv --site GU
 grid D-GU --json
 weigh D-TQ --csv --samples 256
 sensitivity D-VH-DARK --json
+damage --json
+damage D-TQ --json
 sensitivity D-VH-DARK --ascii --width 80
 weigh D-GU --html --samples 256
 show H-TQ-BUS --json

@@ -16,7 +16,19 @@
 /* A report that no failure may replace. */
 static ohmen_report *const untouched = (ohmen_report *)&test_source;
 
-enum call { HAZARDS, PROTECTION, LIST, SHOW, WEIGH, SENSITIVITY, GRID, EXPLAIN, REPORT, HISTORY };
+enum call {
+    HAZARDS,
+    PROTECTION,
+    LIST,
+    SHOW,
+    WEIGH,
+    SENSITIVITY,
+    DAMAGE,
+    GRID,
+    EXPLAIN,
+    REPORT,
+    HISTORY
+};
 
 static ohmen_status call_one(enum call call, ohmen_register *r, const ohmen_query *q,
                              const char *operand, ohmen_report **out, ohmen_error *e)
@@ -28,6 +40,7 @@ static ohmen_status call_one(enum call call, ohmen_register *r, const ohmen_quer
     case SHOW: return ohmen_show(r, q, operand, out, e);
     case WEIGH: return ohmen_weigh(r, q, operand, out, e);
     case SENSITIVITY: return ohmen_sensitivity(r, q, operand, NULL, NULL, out, e);
+    case DAMAGE: return ohmen_damage(r, q, operand, out, e);
     case GRID: return ohmen_grid(r, q, operand, out, e);
     case EXPLAIN: return ohmen_explain(r, q, operand, 0, out, e);
     case REPORT: return ohmen_report_all(r, q, out, e);
@@ -62,6 +75,9 @@ START_TEST(unknown_things)
     expect(r, WEIGH, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, WEIGH, NULL, "H-VH-BUS1", OHMEN_UNKNOWN, "H-VH-BUS1");
     expect(r, SENSITIVITY, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
+    expect(r, DAMAGE, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
+    expect(r, EXPLAIN, NULL, "D-TQ.worst-1[TQ]", OHMEN_UNKNOWN, "D-TQ.worst-1[TQ-");
+    expect(r, EXPLAIN, NULL, "register.worst-1[now]", OHMEN_UNKNOWN, "register.worst-1[today]");
     expect(r, GRID, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, EXPLAIN, NULL, "H-VH-BUS1.rsk", OHMEN_UNKNOWN, "did you mean \"risk\"?");
     expect(r, EXPLAIN, NULL, "", OHMEN_UNKNOWN, "");
