@@ -323,6 +323,18 @@ static ohmen_status prepare(struct figures *f, struct weighing *w, struct branch
     return status;
 }
 
+/* The figures of the worlds are found under the name of the decision. */
+static void join_units(struct branching *b)
+{
+    struct compiled *last = (struct compiled *)b->weighing->unit;
+    for (size_t i = 0; i < b->worlds.by_variant.n; i++) {
+        const struct world *w = b->worlds.by_variant.at[i].value;
+        while (last->also)
+            last = (struct compiled *)last->also;
+        last->also = w->unit;
+    }
+}
+
 ohmen_status branching_compile(struct figures *f, struct weighing *w, ohmen_error *e)
 {
     struct branching *b = NEW(f->arena, struct branching);
@@ -338,5 +350,8 @@ ohmen_status branching_compile(struct figures *f, struct weighing *w, ohmen_erro
         return status;
     find_alternatives(f, b);
     w->branching = b;
-    return branching_figures(b, f, e);
+    status = branching_figures(b, f, e);
+    if (status == OHMEN_OK)
+        join_units(b);
+    return status;
 }

@@ -64,9 +64,11 @@ struct way {
     const double *likelihood;     /* of a reading or what is seen, by hidden state; else NULL */
     double probability;           /* given that one stands at the point; of a choice 1 */
     const double *belief;         /* at its beginning */
-    double amount;                /* cost and damage on it, as believed at its beginning */
-    double value;                 /* cost and damage from its beginning on, the policy followed */
-    double reach;                 /* probability of taking it, the policy followed */
+    const node_id
+        *amounts;  /* cost and damage on it, by hidden state at its beginning; NODE_NONE: 0 */
+    double amount; /* cost and damage on it, as believed at its beginning */
+    double value;  /* cost and damage from its beginning on, the policy followed */
+    double reach;  /* probability of taking it, the policy followed */
     figure_id probability_figure, value_figure, reach_figure; /* or FIGURE_NONE */
 };
 
@@ -78,8 +80,9 @@ struct point {
     const double *belief;
     size_t n;
     struct way *branches;
-    size_t best;       /* POINT_CHOOSE: the branch to take */
-    bool is_stage;     /* a choice that comes again */
+    size_t first_branch; /* number of the first one among all branches of the tree */
+    size_t best;         /* POINT_CHOOSE: the branch to take */
+    bool is_stage;       /* a choice that comes again */
     const char *state; /* of a stage: what is seen or believed, and what is in service; else NULL */
     const char *test;  /* POINT_READ: "T2-WINDING.OIL" */
     double value, reach;

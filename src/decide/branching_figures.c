@@ -142,7 +142,7 @@ static node_id *move_on(struct telling *t, const struct way *b, node_id *belief)
         if (!changes)
             continue;
         if (m->kind == MOVE_TIME)
-            world_passage(&t->b->worlds, m->world, m->to - m->at, &p, NULL); /* it is known */
+            p = world_passage_known(m->world, m->to - m->at);
         for (size_t k = 0; k < n; k++) {
             node_id *terms = NEW_ARRAY(t->f->arena, n, node_id);
             size_t count = 0;

@@ -126,11 +126,10 @@ static void back_over_time(struct rolling *r, const struct move *m, const struct
     size_t n = r->b->worlds.hidden.n;
     node_id *before = NEW_ARRAY(r->worth.f->arena, n, node_id);
     node_id *inside = NEW_ARRAY(r->worth.f->arena, n, node_id);
-    const struct passage *p = NULL;
+    const struct passage *p =
+        m->world->flows.n ? world_passage_known(m->world, m->to - m->at) : NULL;
     for (size_t k = 0; k < n; k++)
         inside[k] = of ? measured(r, m, of, k) : NODE_NONE;
-    if (m->world->flows.n)
-        world_passage(&r->b->worlds, m->world, m->to - m->at, &p, NULL); /* it is known */
     for (size_t k = 0; k < n; k++) {
         node_id then = p ? mixed(r, &p->to[k * n], x->at) : x->at[k];
         node_id now = p ? mixed(r, &p->time[k * n], inside) : inside[k];
@@ -172,40 +171,30 @@ struct by_state branching_back(struct rolling *r, const struct way *b, const str
 
 /* --- amounts --- */
 
-struct amounts {
-    struct by_state cost, damage;
-};
-
-static const struct measure damage_of_all = {PROPERTY_RISK, NULL, {0}, {0}};
-
-static struct measure damage_measure_of_tree(void)
-{
-    struct measure m = damage_of_all;
-    m.dim = dim_money_rate;
-    m.sum = dim_money;
-    return m;
-}
-
 static double value_of(const struct figures *f, node_id n)
 {
     return n == NODE_NONE ? 0 : means_value(f->means, n);
 }
 
-static double expected(const struct figures *f, const struct way *b, size_t n,
-                       const struct amounts *x)
+/* Cost and damage on a branch, in each hidden state at its beginning. */
+static void compile_amounts(struct rolling *r, struct way *b)
 {
-    double sum = 0;
+    const struct measure m = {PROPERTY_RISK, NULL, dim_money_rate, dim_money};
+    size_t n = r->b->worlds.hidden.n;
+    node_id *amounts = NEW_ARRAY(r->worth.f->arena, n, node_id);
+    struct by_state cost = branching_back(r, b, NULL, NULL);
+    struct by_state damage = branching_back(r, b, &m, NULL);
     for (size_t k = 0; k < n; k++)
-        if (b->belief[k] > 0)
-            sum += b->belief[k] * (value_of(f, x->cost.at[k]) + value_of(f, x->damage.at[k]));
-    return sum;
+        amounts[k] = plus(r, cost.at[k], damage.at[k]);
+    b->amounts = amounts;
 }
 
-static void compile_amounts(struct rolling *r, struct way *b, struct amounts *x)
+static void take_amount(const struct figures *f, struct way *b, size_t n)
 {
-    struct measure m = damage_measure_of_tree();
-    x->cost = branching_back(r, b, NULL, NULL);
-    x->damage = branching_back(r, b, &m, NULL);
+    b->amount = 0;
+    for (size_t k = 0; k < n; k++)
+        if (b->belief[k] > 0)
+            b->amount += b->belief[k] * value_of(f, b->amounts[k]);
 }
 
 size_t branching_count(const struct branching *b)
@@ -220,27 +209,24 @@ static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
 {
     struct branching *b = r->b;
     struct figures *f = r->worth.f;
-    struct amounts *all = NEW_ARRAY(f->arena, branching_count(b) + 1, struct amounts);
-    size_t at = 0;
+    size_t n = b->worlds.hidden.n;
     compiled_begin_part(f, b->weighing->alternatives.at[0].variant,
                         model_find(f->base, b->weighing->id), b->weighing->id, "amounts",
                         &r->worth.b);
     money_begin(&r->worth.money, f, &r->worth.b, b->weighing->horizon);
     for (size_t i = 0; i < b->points.n; i++)
         for (size_t k = 0; k < b->points.at[i].n; k++)
-            compile_amounts(r, &b->points.at[i].branches[k], &all[at++]);
-    compile_amounts(r, b->nothing, &all[at]);
+            compile_amounts(r, &b->points.at[i].branches[k]);
+    compile_amounts(r, b->nothing);
     compiled_end(&r->worth.b);
     ohmen_status status = figures_evaluate(f, e);
-    at = 0;
-    for (size_t i = 0; status == OHMEN_OK && i < b->points.n; i++)
-        for (size_t k = 0; k < b->points.at[i].n; k++) {
-            struct way *x = &b->points.at[i].branches[k];
-            x->amount = expected(f, x, b->worlds.hidden.n, &all[at++]);
-        }
-    if (status == OHMEN_OK)
-        b->nothing->amount = expected(f, b->nothing, b->worlds.hidden.n, &all[at]);
-    return status;
+    if (status != OHMEN_OK)
+        return status;
+    for (size_t i = 0; i < b->points.n; i++)
+        for (size_t k = 0; k < b->points.at[i].n; k++)
+            take_amount(f, &b->points.at[i].branches[k], n);
+    take_amount(f, b->nothing, n);
+    return OHMEN_OK;
 }
 
 /* --- rolling back --- */
@@ -268,6 +254,7 @@ static void lay_out(struct branching *b, struct arena *a)
     struct rollback_builder *to = rollback_new(a);
     size_t first = b->points.n;
     for (size_t i = 0; i < b->points.n; i++) {
+        b->points.at[i].first_branch = first - b->points.n;
         add_point(b, to, a, i, first);
         first += b->points.at[i].n;
     }
@@ -281,10 +268,7 @@ static void lay_out(struct branching *b, struct arena *a)
 
 size_t branching_number(const struct branching *b, size_t point, size_t branch)
 {
-    size_t n = b->points.n;
-    for (size_t i = 0; i < point; i++)
-        n += b->points.at[i].n;
-    return n + branch;
+    return b->points.n + b->points.at[point].first_branch + branch;
 }
 
 static void read_results(struct branching *b, const double *value, const uint32_t *chosen,

@@ -13,13 +13,11 @@ static const double SQRT_HALF = 0.70710678118654752440;
 
 struct targets ARRAY_BODY(node_id);
 
-static void add_nets(const struct moving *m, struct targets *to)
+static void add_nodes(const struct moving *m, struct targets *to)
 {
-    for (size_t i = 0; i < m->w->alternatives.n; i++) {
-        figure_id net = m->w->alternatives.at[i].net;
-        if (net != FIGURE_NONE)
-            *array_push(m->f->arena, to) = figure_at(m->f, net)->node;
-    }
+    for (size_t i = 0; i < m->n; i++)
+        if (m->nodes[i] != NODE_NONE)
+            *array_push(m->f->arena, to) = m->nodes[i];
 }
 
 static int by_name(const void *p, const void *q)
@@ -40,21 +38,43 @@ static void find_inputs(struct moving *m)
         qsort(m->inputs.at, m->inputs.n, sizeof *m->inputs.at, by_name);
 }
 
-void moving_open(struct moving *m, struct figures *f, const struct weighing *w)
+static void open_moving(struct moving *m)
 {
+    struct figures *f = m->f;
     struct targets targets = {0};
-    *m = (struct moving){.f = f, .w = w};
-    add_nets(m, &targets);
+    add_nodes(m, &targets);
     /* What is left of other shares must be seen, whether damage follows from it or not. */
     for (figure_id i = 0; i < f->list.n; i++)
         if (figure_at(f, i)->property == PROPERTY_SHARE && !figure_at(f, i)->text)
             *array_push(f->arena, &targets) = figure_at(f, i)->node;
     m->prober = f->points_only ? prober_new(f->arena, f->eval, targets.n, targets.at)
                                : prober_of_means(f->arena, f->means, targets.n, targets.at);
-    m->worth = NEW_ARRAY(f->arena, w->alternatives.n, double);
-    m->missing = NEW_ARRAY(f->arena, w->alternatives.n, double);
+    m->worth = NEW_ARRAY(f->arena, m->n, double);
+    m->missing = NEW_ARRAY(f->arena, m->n, double);
     m->checked = NEW_ARRAY(f->arena, f->list.n, figure_id);
     find_inputs(m);
+}
+
+void moving_open(struct moving *m, struct figures *f, const struct weighing *w)
+{
+    node_id *nodes = NEW_ARRAY(f->arena, w->alternatives.n, node_id);
+    for (size_t i = 0; i < w->alternatives.n; i++) {
+        figure_id net = w->alternatives.at[i].net;
+        nodes[i] = net == FIGURE_NONE ? NODE_NONE : figure_at(f, net)->node;
+    }
+    *m = (struct moving){.f = f, .w = w, .n = w->alternatives.n, .nodes = nodes};
+    open_moving(m);
+}
+
+void moving_open_nodes(struct moving *m, struct figures *f, size_t n, const node_id *nodes)
+{
+    *m = (struct moving){.f = f, .n = n, .nodes = nodes};
+    open_moving(m);
+}
+
+double moving_mean(const struct moving *m, node_id n)
+{
+    return m->f->points_only ? eval_value(m->f->eval, n) : means_value(m->f->means, n);
 }
 
 /* Properties that may have any value need no check. */
@@ -77,27 +97,27 @@ static void find_checked(struct moving *m)
 static void open_for(struct moving *m, size_t n, const struct turn_input *const *inputs)
 {
     struct targets nodes = {0};
+    const struct turn_input **moved = NEW_ARRAY(m->f->arena, n, const struct turn_input *);
     m->n_moved = n;
+    m->moved = moved;
     for (size_t i = 0; i < n; i++) {
-        m->moved[i] = inputs[i];
+        moved[i] = inputs[i];
         for (size_t k = 0; k < inputs[i]->nodes.n; k++)
             *array_push(m->f->arena, &nodes) = inputs[i]->nodes.at[k].node;
     }
     m->x = NEW_ARRAY(m->f->arena, nodes.n, double);
     prober_open(m->prober, nodes.n, nodes.at);
     find_checked(m);
-    for (size_t i = 0; i < m->w->alternatives.n; i++)
+    for (size_t i = 0; i < m->n; i++)
         m->missing[i] = 0;
 }
 
 bool moving_reaches(struct moving *m, const struct turn_input *in)
 {
     open_for(m, 1, &in);
-    for (size_t i = 0; i < m->w->alternatives.n; i++) {
-        figure_id net = m->w->alternatives.at[i].net;
-        if (net != FIGURE_NONE && prober_moves(m->prober, figure_at(m->f, net)->node))
+    for (size_t i = 0; i < m->n; i++)
+        if (m->nodes[i] != NODE_NONE && prober_moves(m->prober, m->nodes[i]))
             return true;
-    }
     return false;
 }
 
@@ -111,21 +131,25 @@ static bool is_possible(const struct moving *m)
     return true;
 }
 
-bool moving_to(struct moving *m, const double *at)
+bool moving_far(struct moving *m, const double *at)
 {
     size_t node = 0;
     for (size_t i = 0; i < m->n_moved; i++)
         for (size_t k = 0; k < m->moved[i]->nodes.n; k++)
             m->x[node++] = m->moved[i]->nodes.at[k].times * at[i];
-    if (!prober_at(m->prober, m->x) || !is_possible(m))
+    if (!prober_at(m->prober, m->x))
         return false;
-    for (size_t i = 0; i < m->w->alternatives.n; i++) {
-        figure_id net = m->w->alternatives.at[i].net;
+    for (size_t i = 0; i < m->n; i++) {
         m->worth[i] = m->missing[i];
-        if (net != FIGURE_NONE)
-            m->worth[i] += prober_value(m->prober, figure_at(m->f, net)->node);
+        if (m->nodes[i] != NODE_NONE)
+            m->worth[i] += prober_value(m->prober, m->nodes[i]);
     }
     return true;
+}
+
+bool moving_to(struct moving *m, const double *at)
+{
+    return moving_far(m, at) && is_possible(m);
 }
 
 /* --- what is missing --- */
@@ -175,7 +199,7 @@ static double add_up(struct moving *m, const struct spread_points *spread, doubl
             if (!moving_to(m, (double[]){x.at, y.at}))
                 continue;
             weight += x.weight * y.weight;
-            for (size_t j = 0; j < m->w->alternatives.n; j++)
+            for (size_t j = 0; j < m->n; j++)
                 sum[j] += x.weight * y.weight * m->worth[j];
         }
     return weight;
@@ -183,13 +207,11 @@ static double add_up(struct moving *m, const struct spread_points *spread, doubl
 
 static void find_missing(struct moving *m, const struct spread_points *spread)
 {
-    double *sum = NEW_ARRAY(m->f->arena, m->w->alternatives.n, double);
+    double *sum = NEW_ARRAY(m->f->arena, m->n, double);
     double weight = add_up(m, spread, sum);
-    for (size_t i = 0; i < m->w->alternatives.n && weight > 0; i++) {
-        figure_id net = m->w->alternatives.at[i].net;
-        if (net != FIGURE_NONE)
-            m->missing[i] = figure_value(m->f, net) - sum[i] / weight;
-    }
+    for (size_t i = 0; i < m->n && weight > 0; i++)
+        if (m->nodes[i] != NODE_NONE)
+            m->missing[i] = moving_mean(m, m->nodes[i]) - sum[i] / weight;
 }
 
 void moving_take(struct moving *m, size_t n, const struct turn_input *const *inputs)
@@ -203,6 +225,11 @@ void moving_take(struct moving *m, size_t n, const struct turn_input *const *inp
         find_spread(m, all[i], &spread[i]);
     open_for(m, n, all);
     find_missing(m, spread);
+}
+
+void moving_take_bare(struct moving *m, size_t n, const struct turn_input *const *inputs)
+{
+    open_for(m, n, inputs);
 }
 
 size_t moving_best(const struct moving *m, const double *worth)

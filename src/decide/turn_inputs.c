@@ -29,7 +29,7 @@ static const struct compiled *unit_of(const struct figures *f, figure_id id)
 
 static bool is_weighed(const struct gathering *x, const char *id)
 {
-    for (size_t i = 0; i < x->w->hazards.n; i++)
+    for (size_t i = 0; x->w && i < x->w->hazards.n; i++)
         if (text_equal(x->w->hazards.at[i].id, id))
             return true;
     return false;

@@ -21,7 +21,8 @@ struct turn_input {
 };
 struct turn_inputs ARRAY_BODY(struct turn_input);
 
-/* Those of the fewest changes first, then by name. `p` knows the targets. */
+/* Those of the fewest changes first, then by name. `p` knows the targets. w may be NULL: no hazard
+ * is weighed. */
 void turn_inputs_of(struct figures *f, const struct weighing *w, const struct prober *p,
                     struct turn_inputs *out);
 

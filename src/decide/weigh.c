@@ -343,6 +343,19 @@ ohmen_status weigh_ranked(struct figures *f, const char *decision, struct weighi
     return status;
 }
 
+/* Figures of worlds under some changes have these in their names. */
+static bool find_changed(struct figures *f, const struct compiled *u, const char *name,
+                         figure_id *out)
+{
+    for (const struct compiled *part = u; part; part = part->also)
+        for (figure_id i = part->first; i < part->first + part->n; i++)
+            if (text_equal(figure_name(f, f->arena, i), name)) {
+                *out = i;
+                return true;
+            }
+    return false;
+}
+
 ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohmen_error *e)
 {
     const char *dot = strchr(name, '.');
@@ -363,5 +376,7 @@ ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohm
     } else {
         return figures_find(f, name, out, e);
     }
+    if (status == OHMEN_OK && strchr(name, '@') && find_changed(f, c, name, out))
+        return OHMEN_OK;
     return status == OHMEN_OK ? compiled_find(f, c, dot ? dot + 1 : "", out, e) : status;
 }

@@ -3,6 +3,8 @@
  * figures. */
 #include "decide/world.h"
 
+#include <math.h>
+
 #include "figure/consequences.h"
 #include "figure/states.h"
 
@@ -182,8 +184,8 @@ static void add_transitions(struct flowing_states *s, size_t i)
         size_t from = row_named(values, state->becomes.keys[r]);
         for (size_t k = 0; k < to->n; k++) {
             const struct quantity *q = ((const struct quantity *const *)to->at)[k];
-            const char *name = arena_printf(f->arena, "%s: %s", s->x->hidden.states[i]->id,
-                                            state->becomes.keys[r]);
+            const char *name =
+                arena_printf(f->arena, "%s/%s", s->x->hidden.states[i]->id, state->becomes.keys[r]);
             node_id n = compile_quantity(s->b, q);
             compiled_add(s->b, PROPERTY_BECOMES, name, to->keys[k], n, state->source,
                          quantity_reads(f, q));
@@ -250,7 +252,6 @@ static ohmen_status compile_flows(struct worlds *x, struct world *w, ohmen_error
         add_transitions(&s, i);
         add_failures(&s, i);
     }
-    b.unit->also = x->w->unit ? x->w->unit->also : NULL;
     w->unit = b.unit;
     compiled_end(&b);
     return OHMEN_OK;
@@ -282,17 +283,23 @@ ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **
 
 /* --- passages --- */
 
-static node_id chain(struct worlds *x, const struct world *w, struct chain *c, const node_id *rates,
+/* Years are told where it is not one. */
+static node_id chain(struct worlds *x, struct building *b, struct chain *c, const node_id *rates,
                      size_t from, size_t to, bool mean)
 {
-    (void)w;
+    const struct hidden *h = &x->hidden;
+    struct arena *a = x->f->arena;
+    const char *end =
+        c->years == 1 ? h->names[to] : arena_printf(a, "%s in %.4g a", h->names[to], c->years);
     c->start = (uint32_t)from;
     c->end = (uint32_t)to;
     c->mean = mean;
-    return graph_chain(x->f->graph, c, rates);
+    node_id n = graph_chain(x->f->graph, c, rates);
+    compiled_add(b, mean ? PROPERTY_SPENDS : PROPERTY_PASSES, h->names[from], end, n, NULL, NULL);
+    return n;
 }
 
-static struct passage *compile_passage(struct worlds *x, const struct world *w, double years)
+static struct passage *compile_passage(struct worlds *x, struct world *w, double years)
 {
     struct arena *a = x->f->arena;
     size_t n = x->hidden.n, n_flows = w->flows.n;
@@ -315,9 +322,11 @@ static struct passage *compile_passage(struct worlds *x, const struct world *w, 
                         arena_printf(a, "passage of %g a", years), &b);
     for (size_t i = 0; i < n; i++)
         for (size_t k = 0; k < n; k++) {
-            to[i * n + k] = chain(x, w, &c, rates, i, k, false);
-            time[i * n + k] = chain(x, w, &c, rates, i, k, true);
+            to[i * n + k] = chain(x, &b, &c, rates, i, k, false);
+            time[i * n + k] = chain(x, &b, &c, rates, i, k, true);
         }
+    b.unit->also = w->unit;
+    w->unit = b.unit;
     compiled_end(&b);
     *p = (struct passage){.years = years, .to = to, .time = time};
     return p;
@@ -334,14 +343,20 @@ static ohmen_status evaluate_passage(struct worlds *x, struct passage *p, ohmen_
     return status;
 }
 
+const struct passage *world_passage_known(const struct world *w, double years)
+{
+    for (size_t i = 0; i < w->passages.n; i++)
+        if (w->passages.at[i]->years == years)
+            return w->passages.at[i];
+    return NULL;
+}
+
 ohmen_status world_passage(struct worlds *x, struct world *w, double years,
                            const struct passage **out, ohmen_error *e)
 {
-    for (size_t i = 0; i < w->passages.n; i++)
-        if (w->passages.at[i]->years == years) {
-            *out = w->passages.at[i];
-            return OHMEN_OK;
-        }
+    *out = world_passage_known(w, years);
+    if (*out)
+        return OHMEN_OK;
     struct passage *p = compile_passage(x, w, years);
     *array_push(x->f->arena, &w->passages) = p;
     *out = p;
@@ -352,5 +367,11 @@ node_id world_measure(struct worth *at, const struct worlds *x, const struct wor
                       size_t hidden, const struct measure *m, double from, double to)
 {
     size_t n = x->w->hazards.n;
-    return measure_over(at, m, n, &w->hazards[hidden * n], from, to);
+    const struct compiled *const *hazards = &w->hazards[hidden * n];
+    double year = floor(from);
+    if (from == year)
+        return measure_over(at, m, n, hazards, from, to);
+    node_id before = measure_over(at, m, n, hazards, year, from);
+    node_id all = measure_over(at, m, n, hazards, year, to);
+    return all == NODE_NONE ? NODE_NONE : graph_op2(at->f->graph, OP_SUBTRACT, all, before);
 }

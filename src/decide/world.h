@@ -48,7 +48,8 @@ struct world {
     const struct variant *variant;
     const struct compiled **hazards; /* [k * n_hazards + h]; NULL: there is none */
     ARRAY(struct flow_of_states) flows;
-    const struct compiled *unit; /* section of the rates; NULL without flows */
+    const struct compiled
+        *unit; /* the last section of its rates and passages; NULL without flows */
     ARRAY(struct passage *) passages;
 };
 
@@ -56,7 +57,7 @@ struct worlds {
     struct figures *f;
     struct weighing *w; /* its hazards are known */
     struct hidden hidden;
-    struct strmap by_variant;
+    struct strmap by_variant; /* in the order in which they were made */
 };
 
 /* Which value a followed state has in a hidden state. */
@@ -76,8 +77,13 @@ ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **
 ohmen_status world_passage(struct worlds *x, struct world *w, double years,
                            const struct passage **out, ohmen_error *e);
 
+/* One that was made; NULL: it was not. */
+const struct passage *world_passage_known(const struct world *w, double years);
+
 /* What a measure is worth now that is done in one hidden state of a world from one time to another;
- * NODE_NONE where nothing is done. In the open section of `at`. */
+ * NODE_NONE where nothing is done. In the open section of `at`. A time that begins within a year is
+ * worth what the time from the beginning of that year is worth less what lies before: so that it
+ * does not matter where time is cut. */
 node_id world_measure(struct worth *at, const struct worlds *x, const struct world *w,
                       size_t hidden, const struct measure *m, double from, double to);
 

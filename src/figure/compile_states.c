@@ -178,6 +178,7 @@ struct mixing {
     const struct combinations *combined;
     const struct compiled **units; /* NULL: there is no such hazard */
     node_id *weights;
+    const node_id **weights_in; /* by combination: of each year; NULL: as its weight in all */
     struct hazard_exports *exports;
 };
 
@@ -248,8 +249,15 @@ static const struct hazard_exports *exports_at(const struct mixing *m, size_t i)
     return m->units[i]->exports;
 }
 
-/* Weight times figure over the combinations; FIGURE_NONE is 0. */
-static node_id weighted(struct mixing *m, const figure_id *figures, struct dim d)
+#define ANY_YEAR UINT32_MAX
+
+static node_id weight_in(const struct mixing *m, size_t i, uint32_t year)
+{
+    return year == ANY_YEAR || !m->weights_in[i] ? m->weights[i] : m->weights_in[i][year];
+}
+
+/* Weight times figure over the combinations, in one year or over all; FIGURE_NONE is 0. */
+static node_id weighted_in(struct mixing *m, const figure_id *figures, struct dim d, uint32_t year)
 {
     struct graph *g = m->f->graph;
     node_id *terms = NEW_ARRAY(m->f->arena, m->combined->list.n, node_id);
@@ -257,19 +265,54 @@ static node_id weighted(struct mixing *m, const figure_id *figures, struct dim d
     for (size_t i = 0; i < m->combined->list.n; i++)
         if (figures[i] != FIGURE_NONE)
             terms[n++] =
-                graph_op2(g, OP_MULTIPLY, m->weights[i], figure_at(m->f, figures[i])->node);
+                graph_op2(g, OP_MULTIPLY, weight_in(m, i, year), figure_at(m->f, figures[i])->node);
     if (n == 0)
         return compile_const(&m->b, 0, d, NULL);
     return n == 1 ? terms[0] : graph_op(g, OP_SUM, n, terms);
 }
 
-/* The product of the shares, which are independent of each other. */
-static node_id weight_of(struct mixing *m, const struct combination *c)
+static node_id weighted(struct mixing *m, const figure_id *figures, struct dim d)
 {
-    node_id w = figure_at(m->f, share_of(m, c, 0))->node;
+    return weighted_in(m, figures, d, ANY_YEAR);
+}
+
+/* The share of one state of a combination, in a year. What changes with time has been compiled. */
+static node_id share_in(struct mixing *m, const struct combination *c, size_t k, uint32_t year)
+{
+    const struct state_course *course = NULL;
+    if (!state_evolves(c->states[k]->data))
+        return figure_at(m->f, share_of(m, c, k))->node;
+    compile_state_course(m->f, m->b.variant->stem, c->states[k]->id, &course, NULL);
+    size_t n = state_values(c->states[k]->data)->n;
+    return course->in_year[year * n + c->values[k]];
+}
+
+/* The product of the shares, which are independent of each other. */
+static node_id weight_in_year(struct mixing *m, const struct combination *c, uint32_t year)
+{
+    node_id w = share_in(m, c, 0, year);
     for (size_t k = 1; k < c->n; k++)
-        w = graph_op2(m->f->graph, OP_MULTIPLY, w, figure_at(m->f, share_of(m, c, k))->node);
+        w = graph_op2(m->f->graph, OP_MULTIPLY, w, share_in(m, c, k, year));
     return w;
+}
+
+static bool combination_evolves(const struct combination *c)
+{
+    for (size_t k = 0; k < c->n; k++)
+        if (state_evolves(c->states[k]->data))
+            return true;
+    return false;
+}
+
+/* Years from which on the variant has its meaning count. */
+static node_id mean_weight(struct mixing *m, const node_id *in_year)
+{
+    struct graph *g = m->f->graph;
+    uint32_t years = horizon_length(m->f->base->settings);
+    uint32_t first = (uint32_t)floor(variant_begins(m->f, m->b.variant));
+    node_id sum =
+        years - first == 1 ? in_year[first] : graph_op(g, OP_SUM, years - first, &in_year[first]);
+    return graph_op2(g, OP_DIVIDE, sum, compile_const(&m->b, years - first, dim_number, NULL));
 }
 
 /* Figures of the same sort, one a combination. */
@@ -348,7 +391,7 @@ static node_id mean_frequency(struct mixing *m, bool one_year, uint32_t year)
         const struct compiled *u = frequency_in(m, i);
         const struct frequency_exports *x = u ? u->exports : NULL;
         if (x)
-            terms[n++] = graph_op2(g, OP_MULTIPLY, m->weights[i],
+            terms[n++] = graph_op2(g, OP_MULTIPLY, weight_in(m, i, one_year ? year : ANY_YEAR),
                                    one_year && x->yearly ? x->yearly[year] : x->mean);
     }
     if (n == 0)
@@ -358,9 +401,38 @@ static node_id mean_frequency(struct mixing *m, bool one_year, uint32_t year)
 
 static void find_weights(struct mixing *m)
 {
-    m->weights = NEW_ARRAY(m->f->arena, m->combined->list.n, node_id);
-    for (size_t i = 0; i < m->combined->list.n; i++)
-        m->weights[i] = weight_of(m, &m->combined->list.at[i]);
+    size_t n = m->combined->list.n;
+    uint32_t years = horizon_length(m->f->base->settings);
+    m->weights = NEW_ARRAY(m->f->arena, n, node_id);
+    m->weights_in = NEW_ARRAY(m->f->arena, n, const node_id *);
+    for (size_t i = 0; i < n; i++) {
+        const struct combination *c = &m->combined->list.at[i];
+        if (!combination_evolves(c)) {
+            m->weights[i] = weight_in_year(m, c, 0);
+            continue;
+        }
+        node_id *in_year = NEW_ARRAY(m->f->arena, years, node_id);
+        for (uint32_t y = 0; y < years; y++)
+            in_year[y] = weight_in_year(m, c, y);
+        m->weights_in[i] = in_year;
+        m->weights[i] = mean_weight(m, in_year);
+    }
+}
+
+/* Courses of what changes with time, before the section of the mean is opened. */
+static ohmen_status compile_courses(struct mixing *m, ohmen_error *e)
+{
+    ohmen_status status = OHMEN_OK;
+    for (size_t i = 0; i < m->combined->list.n; i++) {
+        const struct combination *c = &m->combined->list.at[i];
+        for (size_t k = 0; status == OHMEN_OK && k < c->n; k++) {
+            const struct state_course *unused;
+            if (state_evolves(c->states[k]->data))
+                status =
+                    compile_state_course(m->f, m->b.variant->stem, c->states[k]->id, &unused, e);
+        }
+    }
+    return status;
 }
 
 static const node_id *mean_frequencies(struct mixing *m)
@@ -370,7 +442,8 @@ static const node_id *mean_frequencies(struct mixing *m)
     bool yearly = false;
     for (size_t i = 0; i < m->combined->list.n; i++) {
         const struct compiled *u = frequency_in(m, i);
-        yearly = yearly || (u && ((const struct frequency_exports *)u->exports)->yearly);
+        yearly = yearly || (u && ((const struct frequency_exports *)u->exports)->yearly) ||
+                 m->weights_in[i];
     }
     if (!yearly)
         return NULL;
@@ -408,6 +481,10 @@ ohmen_status compile_mean_frequency(struct figures *f, const struct variant *v,
     if (status != OHMEN_OK)
         return status;
     bool same = same_frequency(&m);
+    if (!same)
+        status = compile_courses(&m, e);
+    if (status != OHMEN_OK)
+        return status;
     const struct compiled *first = same ? frequency_in(&m, 0) : NULL;
     compiled_begin_part(f, v, o, o->id, PART_FREQUENCY, &m.b);
     m.b.unit->exports = x;
@@ -464,7 +541,7 @@ static void add_years(struct mixing *m)
     uint32_t years = horizon_length(s);
     bool yearly = false;
     for (size_t i = 0; i < m->combined->list.n; i++)
-        yearly = yearly || (m->units[i] && exports_at(m, i)->of_year);
+        yearly = yearly || m->weights_in[i] || (m->units[i] && exports_at(m, i)->of_year);
     x->n_yearly = yearly ? years : 1;
     x->yearly = &x->risk;
     if (!yearly)
@@ -479,7 +556,7 @@ static void add_years(struct mixing *m)
         }
         of_year[y] = y;
         risks[y] = compiled_add(&m->b, PROPERTY_RISK, horizon_label(f->arena, s, y), NULL,
-                                weighted(m, parts, dim_money_rate), NULL, NULL);
+                                weighted_in(m, parts, dim_money_rate, y), NULL, NULL);
     }
     x->yearly = risks;
     x->of_year = of_year;
@@ -561,6 +638,8 @@ ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, con
     struct mixing m = {.f = f, .object = o, .hazard = o->data, .combined = c};
     m.b.variant = v;
     ohmen_status status = compile_combinations(&m, e);
+    if (status == OHMEN_OK)
+        status = compile_courses(&m, e);
     if (status != OHMEN_OK)
         return status;
     m.exports = NEW(f->arena, struct hazard_exports);
@@ -571,8 +650,10 @@ ohmen_status compile_mean_hazard(struct figures *f, const struct variant *v, con
     m.b.unit->also = compiled_part(&m.b, o->id, PART_FREQUENCY);
     m.exports->frequency = m.b.unit->also->main;
     add_figures(&m);
-    for (size_t i = 0; i < m.exports->n_states; i++)
+    for (size_t i = 0; i < m.exports->n_states; i++) {
         m.exports->states[i].weight = m.weights[i];
+        m.exports->states[i].weight_in = m.weights_in[i];
+    }
     m.b.unit->main = m.exports->risk;
     compiled_end(&m.b);
     *out = m.b.unit;

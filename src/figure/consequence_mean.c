@@ -36,6 +36,13 @@ static figure_id effect_in(const struct counting *c, size_t state, const struct 
     return found->yearly[h->of_year ? h->of_year[year] : 0];
 }
 
+/* The share of a state: in one year, or over all of them. */
+static node_id weight_in(const struct counting *c, size_t state, bool one_year, uint32_t year)
+{
+    const struct hazard_state *s = &c->of->states[state];
+    return one_year && s->weight_in ? s->weight_in[year] : s->weight;
+}
+
 /* The sum over the states of their share of time times the effect. */
 static node_id weighted(struct counting *c, const struct consequence *like, bool one_year,
                         uint32_t year)
@@ -45,7 +52,7 @@ static node_id weighted(struct counting *c, const struct consequence *like, bool
     for (size_t i = 0; i < c->of->n_states; i++) {
         figure_id id = effect_in(c, i, like, one_year, year);
         if (id != FIGURE_NONE)
-            nodes[n++] = counting_product(c, c->of->states[i].weight, counting_node(c, id));
+            nodes[n++] = counting_product(c, weight_in(c, i, one_year, year), counting_node(c, id));
     }
     return counting_sum(c, n, nodes, effect_dim(like->property));
 }

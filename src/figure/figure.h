@@ -121,6 +121,10 @@
     X(BELIEF, "belief", "probability of a state as it is believed at a point of a tree")           \
     X(REACH, "reach", "probability of coming to a point of a tree, the best branches taken")       \
     X(BECOMES, "becomes", "how often a state becomes another one")                                 \
+    X(PASSES, "passes",                                                                            \
+      "probability of being in the second state some time behind being in the first")              \
+    X(SPENDS, "spends", "share of that time that is spent in the second state")                    \
+    X(BEGINS, "begins", "probability of a state at the beginning of a year")                       \
     X(READING_PRICE, "price-of-reading", "present value of what is paid before a reading")         \
     X(READING_WORTH, "worth-of-reading", "what a reading is worth before it is paid for")          \
     X(TOGETHER, "together", "what options are worth together beyond what each is worth alone")     \
@@ -388,6 +392,7 @@ struct hazard_state {
     const char *name;            /* "T1-OUT=none+T2-OUT=a-out" */
     double share;                /* of time, as evaluated when it was compiled */
     node_id weight;              /* the same, in the section of the mean */
+    const node_id *weight_in;    /* by year of the horizon; NULL: as `weight` in all */
     const struct compiled *unit; /* NULL: there is no such hazard in it */
 };
 

@@ -328,6 +328,9 @@ static ohmen_status add_parts(struct figures *f, const struct variant *v, const 
                               ohmen_error *e)
 {
     struct upkeep upkeep;
+    const struct state_course *unused;
+    if (u->object && u->object->kind == KIND_STATE && state_evolves(u->object->data))
+        return compile_state_course(f, v->stem, u->id, &unused, e);
     if (!u->object || u->object->kind != KIND_ELEMENT)
         return OHMEN_OK;
     if (((const struct element_exports *)u->exports)->tested)
@@ -398,7 +401,6 @@ const struct compiled *figures_settings(struct figures *f)
 struct looking {
     struct arena *arena;
     struct text keys;
-    bool unknown; /* a state that is unknown: its changes are not used either */
 };
 
 static enum walk look_at_field(void *ctx, const struct visit *v)

@@ -55,6 +55,18 @@ bool reference_computes(const struct reference *r, const struct object *to);
 const char *states_reset(const struct figures *f, const struct variant *v, const struct state *s,
                          double *when);
 
+/* What is unknown and changes with time: the mean probability of each value in each year of the
+ * horizon, and over all of them. The part "course" of the state, with figures such as
+ * S.share.aged.2031. */
+struct state_course {
+    const node_id *in_year; /* [year * n + value] */
+    const node_id *mean;    /* by value */
+};
+#define PART_STATE_COURSE "course"
+/* v: without states that are fixed. */
+ohmen_status compile_state_course(struct figures *f, const struct variant *v, const char *id,
+                                  const struct state_course **out, ohmen_error *e);
+
 /* A state: its shares of time, or the probabilities of what is unknown. */
 ohmen_status compile_state(struct figures *f, const struct variant *v, const struct object *o,
                            struct compiled **out, ohmen_error *e);

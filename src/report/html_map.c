@@ -17,8 +17,7 @@ enum {
     LETTER_ALONG = 60,
     TODAY_ACROSS = 55,
     TODAY_ALONG = 14,
-    LETTER_ROOM = 24, /* a run this wide reads well with a letter in it */
-    SHADES = 6
+    LETTER_ROOM = 24 /* a run this wide reads well with a letter in it */
 };
 
 struct letter {
@@ -94,7 +93,7 @@ static const char *class_of(struct html *h, const struct map *m, size_t choice)
         return "bare";
     for (size_t i = 0; i < choice; i++)
         shade += !m->choices.at[i].nothing;
-    return arena_printf(h->page.arena, "fill c%zu", shade % SHADES);
+    return svg_shade_class(h, shade);
 }
 
 /* The first column of the row, from x on, that has another choice. */

@@ -20,17 +20,33 @@ const char *svg_length(char *buf, double x)
     return buf;
 }
 
-void svg_open(struct html *h, int height, const char *title, const char *words)
+/* Ends the tag that opens a picture. */
+void svg_words(struct html *h, const char *title, const char *words)
 {
     const char *head = html_id(h, "picture"), *body = html_id(h, "picture-words");
     text_printf(h->out,
-                "<svg viewBox=\"0 0 %d %d\" role=\"img\" aria-labelledby=\"%s\" "
-                "aria-describedby=\"%s\">\n<title id=\"%s\">",
-                SVG_WIDTH, height, head, body, head);
+                " role=\"img\" aria-labelledby=\"%s\" aria-describedby=\"%s\">\n"
+                "<title id=\"%s\">",
+                head, body, head);
     html_bare_text(h, title);
     text_printf(h->out, "</title>\n<desc id=\"%s\">", body);
     html_bare_text(h, words);
     html_raw(h, "</desc>\n");
+}
+
+void svg_open(struct html *h, int height, const char *title, const char *words)
+{
+    text_printf(h->out, "<svg viewBox=\"0 0 %d %d\"", SVG_WIDTH, height);
+    svg_words(h, title, words);
+}
+
+void svg_open_piece(struct html *h, double width, double from, double until, bool natural)
+{
+    char a[32], b[32], c[32];
+    text_printf(h->out, "<svg viewBox=\"0 %s %s %s\"", svg_length(a, from), svg_length(b, width),
+                svg_length(c, until - from));
+    if (natural)
+        text_printf(h->out, " width=\"%s\"", svg_length(a, width));
 }
 
 void svg_line(struct html *h, const char *class, double x1, double y1, double x2, double y2)
@@ -48,6 +64,26 @@ void svg_box(struct html *h, const char *class, double x, double y, double width
     svg_length(c, x + width);
     svg_length(d, y + height);
     text_printf(h->out, "<path class=\"%s\" d=\"M%s %sH%sV%sH%sZ\"/>\n", class, a, b, c, d, a);
+}
+
+void svg_branch(struct html *h, const char *class, struct svg_bend from, double fork_x, double y,
+                double end_x)
+{
+    char a[32], b[32], c[32], d[32], e[32], f[32];
+    text_printf(h->out, "<path class=\"%s\" d=\"M%s %sV%sL%s %sH%s\"/>\n", class,
+                svg_length(a, from.x), svg_length(b, from.y), svg_length(c, from.upright),
+                svg_length(d, fork_x), svg_length(e, y), svg_length(f, end_x));
+}
+
+void svg_arrow_head(struct html *h, double x, double y, int length)
+{
+    char a[32], b[32], c[32], d[32], e[32];
+    svg_length(a, x - length);
+    svg_length(b, y - length / 2.0);
+    svg_length(c, x);
+    svg_length(d, y);
+    svg_length(e, y + length / 2.0);
+    text_printf(h->out, "<path class=\"head\" d=\"M%s %sL%s %sL%s %sZ\"/>\n", a, b, c, d, a, e);
 }
 
 void svg_text(struct html *h, const char *class, double x, double y, const char *anchor,
@@ -77,6 +113,11 @@ const char *svg_line_class(struct html *h, size_t i)
     return arena_printf(h->page.arena, "l%zu", i % 6);
 }
 
+const char *svg_shade_class(struct html *h, size_t i)
+{
+    return arena_printf(h->page.arena, "fill c%zu", i % 6);
+}
+
 /* Markup that is kept for later is written beside the page. */
 static struct html beside(const struct html *h, struct text *out)
 {
@@ -97,6 +138,17 @@ const char *svg_sample(struct html *h, const char *class, const char *symbol)
     svg_line(&o, class, 0, 8, 56, 8);
     if (*symbol)
         svg_text(&o, "symbol", 28, 12, "middle", symbol);
+    html_raw(&o, "</svg>");
+    return text_str(&out);
+}
+
+const char *svg_arrow_sample(struct html *h)
+{
+    enum { ARROW = 12 };
+    struct text out;
+    struct html o = beside(h, &out);
+    text_printf(&out, sample_opening, 16, 16);
+    svg_arrow_head(&o, 14, 8, ARROW);
     html_raw(&o, "</svg>");
     return text_str(&out);
 }
@@ -146,6 +198,18 @@ static void put_circle(struct html *h, const char *class, double x, double y, in
                 svg_length(a, x), svg_length(b, y), r);
 }
 
+/* Its tip to the left. */
+static void put_triangle(struct html *h, double x, double y, double r)
+{
+    char a[32], b[32], c[32], d[32], e[32];
+    svg_length(a, x - r);
+    svg_length(b, y);
+    svg_length(c, x + r);
+    svg_length(d, y - r);
+    svg_length(e, y + r);
+    text_printf(h->out, "<path class=\"part\" d=\"M%s %sL%s %sV%sZ\"/>", a, b, c, d, e);
+}
+
 static void put_shape(struct html *h, enum svg_shape shape, double x, double y)
 {
     switch (shape) {
@@ -154,6 +218,11 @@ static void put_shape(struct html *h, enum svg_shape shape, double x, double y)
     case SVG_DIAMOND: put_diamond(h, "disc", x, y, SVG_MARK + 1.5); break;
     case SVG_PART: put_circle(h, "part", x, y, SVG_PART_MARK); break;
     case SVG_PARTS: put_diamond(h, "part", x, y, SVG_PART_MARK + 1.5); break;
+    case SVG_SQUARE:
+        svg_box(h, "part", x - SVG_NODE, y - SVG_NODE, 2 * SVG_NODE, 2 * SVG_NODE);
+        break;
+    case SVG_CIRCLE: put_circle(h, "part", x, y, SVG_NODE); break;
+    case SVG_TRIANGLE: put_triangle(h, x, y, SVG_NODE); break;
     }
 }
 

@@ -140,6 +140,8 @@ static void put_row(struct html *h, const struct table_shape *t, size_t i, const
             continue;
         if (j == 0 && sign)
             text_printf(h->out, "<td>%s</td>", sign);
+        else if (t->columns[j].drawn && drawn && j == naming)
+            text_printf(h->out, "<th scope=\"row\" class=\"drawn\">%s</th>", drawn);
         else if (t->columns[j].drawn && drawn)
             text_printf(h->out, "<td class=\"drawn\">%s</td>", drawn);
         else

@@ -137,6 +137,61 @@ struct lines policy_remarks(const struct policy_plane *g)
     return remarks;
 }
 
+/* --- runs --- */
+
+/* The first time, from `from` on, at which a condition has another sign. */
+static size_t run_end(const struct policy *o, size_t condition, size_t from)
+{
+    struct policy_cell first = policy_cell_at(o, condition, from);
+    size_t end = from + 1;
+    for (; end < o->times.n; end++) {
+        struct policy_cell c = policy_cell_at(o, condition, end);
+        if (c.action != first.action || (c.reach > 0) != (first.reach > 0))
+            break;
+    }
+    return end;
+}
+
+static void add_run(const struct policy_plane *g, struct report *r, struct block *b,
+                    size_t condition, const struct policy_span *s)
+{
+    const struct policy *o = g->policy;
+    struct policy_cell c = policy_cell_at(o, condition, s->from);
+    double least = c.reach, greatest = c.reach;
+    for (size_t t = s->from; t < s->until; t++) {
+        least = fmin(least, policy_cell_at(o, condition, t).reach);
+        greatest = fmax(greatest, policy_cell_at(o, condition, t).reach);
+    }
+    struct row *row = block_row(r, b);
+    row_text(r, row, o->conditions.at[condition]);
+    row_text(r, row, policy_time(g, s));
+    row_text(r, row, c.action == POLICY_NONE ? POLICY_SILENT_WORDS : o->actions.at[c.action].name);
+    row_number(r, row, least, s->until - s->from == 1 ? c.figure : NULL);
+    row_number(r, row, greatest, NULL);
+}
+
+const struct block *policy_runs(const struct policy_plane *g)
+{
+    const struct policy *o = g->policy;
+    struct report r;
+    report_init(&r, g->page->arena);
+    struct block *b = report_table(&r, NULL, NULL);
+    block_column(&r, b, "condition", "Condition", "", STYLE_PLAIN);
+    block_column(&r, b, "times", "Times", "", STYLE_PLAIN);
+    block_column(&r, b, "action", "Action", "", STYLE_PLAIN);
+    block_column(&r, b, "least", "Reached at least", "", STYLE_PROBABILITY);
+    block_column(&r, b, "greatest", "Reached at most", "", STYLE_PROBABILITY);
+    for (size_t i = 0; i < o->conditions.n; i++) {
+        for (size_t from = 0, end; from < o->times.n; from = end) {
+            end = run_end(o, i, from);
+            struct policy_cell c = policy_cell_at(o, i, from);
+            if (*policy_sign(g, &c))
+                add_run(g, &r, b, i, &(struct policy_span){from, end});
+        }
+    }
+    return b;
+}
+
 /* --- all of it --- */
 
 static void add_data(struct report *r, struct block *b, const struct policy *o, size_t condition,

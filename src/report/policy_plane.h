@@ -41,6 +41,8 @@ const char *policy_time(const struct policy_plane *g, const struct policy_span *
 const struct block *policy_key(const struct policy_plane *g);
 bool policy_has_unreached(const struct policy *o);
 struct lines policy_remarks(const struct policy_plane *g);
+/* The cells as a table: a row for each run of times at which a condition has the same sign. */
+const struct block *policy_runs(const struct policy_plane *g);
 /* Every cell as a row, for CSV. */
 const struct block *policy_data(struct arena *a, const struct policy *o);
 

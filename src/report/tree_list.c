@@ -65,7 +65,7 @@ const char *tree_remark(struct arena *a, const struct tree_node *n)
     if (n->same_as)
         return arena_printf(a, "as %s", n->same_as);
     if (n->folded)
-        return arena_printf(a, "%zu end%s", n->ends, n->ends == 1 ? "" : "s");
+        return arena_printf(a, "… %zu end%s", n->ends, n->ends == 1 ? "" : "s");
     return "";
 }
 

@@ -35,7 +35,7 @@ struct tree_list ARRAY_BODY(struct tree_item);
 struct tree_list tree_list_of(struct arena *a, const struct tree *t, bool shown);
 /* Whether pages show what is below a node. */
 bool tree_is_open(const struct tree_node *n);
-/* What is said behind the label: "12 ends", "as survey-first.poor", or "". */
+/* What is said behind the label: "… 12 ends", "as survey-first.poor", or "". */
 const char *tree_remark(struct arena *a, const struct tree_node *n);
 /* Whether any node has a probability, or is reached with one. */
 bool tree_has_chances(const struct tree_list *l);

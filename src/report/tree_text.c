@@ -139,10 +139,8 @@ static struct lines lines_of(const struct drawing *d, const struct tree_node *n,
     const struct page *p = d->page;
     struct lines lines = page_wrap(p, page_clean(p, n->label), width);
     const char *remark = page_clean(p, tree_remark(p->arena, n));
-    const char *before = n->folded && !n->same_as ? glyph(p, FOLDED) : "";
     if (*remark)
-        add_remark(p, &lines, arena_printf(p->arena, "%s%s%s", before, *before ? " " : "", remark),
-                   width);
+        add_remark(p, &lines, remark, width);
     if (part)
         add_remark(p, &lines, arena_printf(p->arena, "(goes on below as part %zu)", part), width);
     const char *steps = page_clean(p, n->steps);

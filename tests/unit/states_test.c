@@ -543,7 +543,7 @@ START_TEST(wrong_states)
 }
 END_TEST
 
-START_TEST(unknown_states_are_named_unused)
+START_TEST(unknown_states_are_true_or_not)
 {
     struct arena *a = arena_new(NULL);
     struct loaded l;
@@ -555,10 +555,12 @@ START_TEST(unknown_states_are_named_unused)
                                       "  T: {varies: {p: 1 %, q: rest}, when: {p: " OUT("B") "}}\n",
                 NULL);
     figures_unused(a, l.model, &u);
-    ck_assert_uint_eq(u.n, 1);
-    ck_assert_str_eq(u.at[0], "S: is, when");
-    expect_unknown(&l, "S.share.p", OHMEN_COMPUTE, "is unknown, which this version");
-    expect_unknown(&l, "H.risk@S=p", OHMEN_COMPUTE, "is unknown, which this version");
+    ck_assert_uint_eq(u.n, 0);
+    double in = loaded_value(&l, "H.risk@S=p"), out = loaded_value(&l, "H.risk@S=q");
+    ck_assert_double_eq(loaded_value(&l, "S.share.p"), 0.01);
+    ck_assert_double_eq(loaded_value(&l, "S.share.q"), 0.99);
+    ck_assert_double_gt(in, out);
+    ck_assert_double_eq_tol(loaded_value(&l, "H.risk"), 0.01 * in + 0.99 * out, 1e-12 * in);
     arena_free(a);
 }
 END_TEST
@@ -582,7 +584,7 @@ int main(void)
     tcase_add_test(t, too_many_combinations);
     tcase_add_test(t, formulas);
     tcase_add_test(t, wrong_states);
-    tcase_add_test(t, unknown_states_are_named_unused);
+    tcase_add_test(t, unknown_states_are_true_or_not);
     suite_add_tcase(s, t);
     SRunner *sr = srunner_create(s);
     srunner_run_all(sr, CK_NORMAL);

@@ -252,18 +252,22 @@ static void refused(struct loaded *l, const char *decision, ohmen_status expecte
     ck_assert_ptr_null(w);
 }
 
-START_TEST(trees_are_refused)
+START_TEST(trees_are_weighed)
 {
     struct arena *a = arena_new(NULL);
     struct loaded l;
     const char *texts[] = {
         settings, "decisions: {TREE: {question: What?, choose: {wait: [{wait: 2 a}], pay: [{pay: 3 "
                   "EUR}]}}}\n"};
-    const char *words =
-        "\"TREE\" is a decision tree, which this version stores but does not evaluate";
+    struct weighing *w, *again;
     loaded_texts(&l, a, 2, texts, NULL);
-    refused(&l, "TREE", OHMEN_COMPUTE, words);
-    refused(&l, "TREE", OHMEN_COMPUTE, words);
+    ck_assert_int_eq(weigh_compile(l.figures, "TREE", &w, NULL), OHMEN_OK);
+    ck_assert_int_eq(weigh_compile(l.figures, "TREE", &again, NULL), OHMEN_OK);
+    ck_assert_ptr_eq(w, again);
+    ck_assert_uint_eq(w->alternatives.n, 3);
+    ck_assert_str_eq(w->alternatives.at[1].name, "pay");
+    ck_assert_double_eq(loaded_value(&l, "TREE.net-present-value.pay"), -3);
+    ck_assert_double_eq(loaded_value(&l, "TREE.net-present-value.wait"), 0);
     refused(&l, "TREES", OHMEN_UNKNOWN, "there is no decision \"TREES\" (did you mean \"TREE\"?)");
     arena_free(a);
 }
@@ -280,6 +284,6 @@ TCase *weigh_set_case(void)
     tcase_add_test(t, nothing_comes_of_dates);
     tcase_add_test(t, last_day_of_a_leap_year);
     tcase_add_test(t, cost_behind_the_horizon);
-    tcase_add_test(t, trees_are_refused);
+    tcase_add_test(t, trees_are_weighed);
     return t;
 }

@@ -1,0 +1,199 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* A tree as a choice of which the means of its amounts and of the hidden states may be others: it is
+ * rolled back anew, with beliefs by Bayes' rule from the start on. For what information is worth,
+ * which changes what is done later too. */
+#include "decide/branching_choice.h"
+
+struct rerolling {
+    const struct branching *b;
+    struct rollback layout; /* with amounts and probabilities of its own */
+    double *belief;         /* [point * n + hidden] */
+    bool *known;
+    double *start, *value, *scratch;
+    size_t n; /* hidden states */
+};
+
+static const node_id *amounts_of(const struct branching *b, size_t branch)
+{
+    for (size_t i = 0; i < b->points.n; i++) {
+        if (branch < b->points.at[i].n)
+            return b->points.at[i].branches[branch].amounts;
+        branch -= b->points.at[i].n;
+    }
+    return b->nothing->amounts;
+}
+
+/* The targets: shares of the hidden states, then amounts by branch and hidden state, those of doing
+ * nothing last. What is never asked for stands for the first share. */
+static node_id *targets_of(struct arena *a, const struct branching *b, size_t n_branches)
+{
+    size_t n = b->worlds.hidden.n;
+    node_id *all = NEW_ARRAY(a, n * (n_branches + 2), node_id);
+    for (size_t k = 0; k < n; k++)
+        all[k] = b->worlds.hidden.share[k];
+    for (size_t i = 0; i <= n_branches; i++) {
+        const node_id *amounts = amounts_of(b, i);
+        for (size_t k = 0; k < n; k++)
+            all[n * (i + 1) + k] = amounts[k] == NODE_NONE ? all[0] : amounts[k];
+    }
+    return all;
+}
+
+static double amount(const struct rerolling *r, const struct way *x, const double *values,
+                     const double *belief)
+{
+    double sum = 0;
+    for (size_t k = 0; k < r->n; k++)
+        if (x->amounts[k] != NODE_NONE && belief[k] > 0)
+            sum += belief[k] * values[k];
+    return sum;
+}
+
+/* What is believed behind the moves of a branch, in place. */
+static void move_on(struct rerolling *r, const struct way *x, double *belief)
+{
+    double *after = r->scratch;
+    for (size_t i = 0; i < x->moves.n; i++) {
+        const struct move *m = &x->moves.at[i];
+        const struct passage *p = NULL;
+        bool flows = m->kind == MOVE_TIME && m->world->flows.n;
+        if (m->kind != MOVE_RESET && !flows)
+            continue;
+        if (flows)
+            p = world_passage_known(m->world, m->to - m->at);
+        for (size_t k = 0; k < r->n; k++)
+            after[k] = 0;
+        for (size_t h = 0; h < r->n; h++)
+            for (size_t k = 0; k < r->n; k++)
+                after[k] += belief[h] * (p ? p->p[h * r->n + k] : (double)(m->map[h] == k));
+        for (size_t k = 0; k < r->n; k++)
+            belief[k] = after[k];
+    }
+}
+
+/* Beliefs at the beginning of a branch; its probability. */
+static double begin(const struct rerolling *r, const struct point *p, const struct way *x,
+                    const double *at, double *belief)
+{
+    double sum = 0;
+    (void)p;
+    if (!x->likelihood) {
+        for (size_t k = 0; k < r->n; k++)
+            belief[k] = at[k];
+        return x->probability;
+    }
+    for (size_t k = 0; k < r->n; k++)
+        sum += at[k] * x->likelihood[k];
+    for (size_t k = 0; k < r->n; k++)
+        belief[k] = sum > 0 ? at[k] * x->likelihood[k] / sum : 0;
+    return sum;
+}
+
+static void prepare(struct rerolling *r, const double *values)
+{
+    const struct branching *b = r->b;
+    double *belief = &r->belief[b->points.n * r->n];
+    for (size_t i = 0; i < b->points.n; i++)
+        r->known[i] = i == 0;
+    for (size_t k = 0; k < r->n; k++)
+        r->belief[k] = values[k];
+    for (size_t i = b->points.n; i > 0; i--) {
+        size_t at = b->order[i - 1];
+        const struct point *p = &b->points.at[at];
+        for (size_t k = 0; k < p->n && r->known[at]; k++) {
+            const struct way *x = &p->branches[k];
+            size_t number = p->first_branch + k, place = r->layout.place[b->points.n + number];
+            double probability = begin(r, p, x, &r->belief[at * r->n], belief);
+            r->layout.amount[place] = -amount(r, x, &values[r->n * (number + 1)], belief);
+            if (p->kind != POINT_CHOOSE)
+                r->layout.probability[place] = probability;
+            if (r->known[x->to])
+                continue;
+            move_on(r, x, belief);
+            for (size_t h = 0; h < r->n; h++)
+                r->belief[x->to * r->n + h] = belief[h];
+            r->known[x->to] = true;
+        }
+    }
+}
+
+/* What the branches by which an alternative begins are worth on average. */
+static double begins(const struct rerolling *r, size_t which)
+{
+    const struct branching *b = r->b;
+    const struct point *root = &b->points.at[0];
+    const char *label = b->weighing->alternatives.at[which].options[0];
+    const size_t *place = r->layout.place;
+    double sum = 0;
+    if (b->repeats && text_equal(label, POLICY))
+        return r->value[place[0]];
+    for (size_t i = 0; i < (root->kind == POINT_SEE ? root->n : 1); i++) {
+        const struct way *seen = root->kind == POINT_SEE ? &root->branches[i] : NULL;
+        const struct point *p = seen ? &b->points.at[seen->to] : root;
+        double share =
+            seen ? r->layout.probability[place[b->points.n + root->first_branch + i]] : 1;
+        for (size_t k = 0; k < p->n; k++)
+            if (text_equal(p->branches[k].label, label))
+                sum += share * r->value[place[b->points.n + p->first_branch + k]];
+    }
+    return sum;
+}
+
+static double roll(void *ctx, const double *values, size_t which)
+{
+    struct rerolling *r = ctx;
+    size_t nothing = branching_count(r->b) + 1;
+    double worth = amount(r, r->b->nothing, &values[r->n * nothing], values);
+    return which == 0 ? 0 : worth + begins(r, which);
+}
+
+static double worth_of(void *ctx, const double *values, size_t which)
+{
+    struct rerolling *r = ctx;
+    prepare(r, values);
+    rollback_values(&r->layout, isa_best(), r->value);
+    return roll(ctx, values, which);
+}
+
+/* Ties by name. */
+static double best_of(void *ctx, const double *values, size_t *which)
+{
+    struct rerolling *r = ctx;
+    const struct weighing *w = r->b->weighing;
+    double best = 0;
+    *which = 0;
+    prepare(r, values);
+    rollback_values(&r->layout, isa_best(), r->value);
+    for (size_t i = 1; i < w->alternatives.n; i++) {
+        double worth = roll(ctx, values, i);
+        bool first = text_compare(w->alternatives.at[i].name, w->alternatives.at[*which].name) < 0;
+        if (worth > best || (worth == best && first)) {
+            best = worth;
+            *which = i;
+        }
+    }
+    return best;
+}
+
+static double *copied(struct arena *a, const double *from, size_t n)
+{
+    return arena_copy(a, from, n * sizeof *from);
+}
+
+struct choice choice_of_branching(struct arena *a, const struct branching *b)
+{
+    struct rerolling *r = NEW(a, struct rerolling);
+    size_t n = b->worlds.hidden.n, branches = branching_count(b);
+    *r = (struct rerolling){.b = b, .layout = *b->laid_out, .n = n};
+    r->layout.amount = copied(a, b->laid_out->amount, b->laid_out->n);
+    r->layout.probability = copied(a, b->laid_out->probability, b->laid_out->n);
+    r->belief = NEW_ARRAY(a, (b->points.n + 1) * n, double);
+    r->known = NEW_ARRAY(a, b->points.n, bool);
+    r->value = NEW_ARRAY(a, b->laid_out->n, double);
+    r->scratch = NEW_ARRAY(a, n, double);
+    return (struct choice){.ctx = r,
+                           .n_targets = n * (branches + 2),
+                           .targets = targets_of(a, b, branches),
+                           .best = best_of,
+                           .worth = worth_of};
+}
