@@ -337,6 +337,10 @@ static void how_sure(struct memo *m)
 static void part_recommendation(struct memo *m)
 {
     report_heading(m->j->report, 2, "Recommendation");
+    if (m->w->branching) {
+        part_branching_recommendation(m->j, m->w);
+        return;
+    }
     recommended(m);
     how_sure(m);
     costs(m);
@@ -368,9 +372,9 @@ static void untouched(struct memo *m)
     for (size_t i = 0; i < m->w->hazards.n; i++)
         here += m->w->hazards.at[i].now != NULL;
     report_note(m->j->report, "untouched",
-                "Weighed: %zu of the %zu hazards of the register, those that an option reaches or "
+                "Weighed: %zu of the %zu hazards of the register, those that %s reaches or "
                 "that stand in the focus. What is not in the register is not covered at all.",
-                here, all);
+                here, all, m->w->branching ? "a branch or an unknown state" : "an option");
 }
 
 static void part_left_out(struct memo *m)
@@ -427,6 +431,11 @@ static void part_grounds(struct memo *m)
         part_rests_on(m->j, m->w);
         part_turn(m->j, m->w);
     }
+    if (m->w->branching) {
+        report_heading(m->j->report, 2, "Options of the plan");
+        part_options(m->j, m->w);
+        return;
+    }
     if (m->w->decision->options.n == 0)
         return;
     report_heading(m->j->report, 2, "Money over the years");
@@ -442,6 +451,8 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     part_recommendation(&m);
     report_heading(j->report, 2, "Alternatives");
     part_alternatives(j, w);
+    if (w->branching)
+        part_branching(j, w);
     part_worth_by_perspective(j, w);
     part_together(j, w);
     part_customers_and_people(j, w);
@@ -449,7 +460,8 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     report_heading(j->report, 2, "How bad it may get");
     part_loss(j, w);
     report_heading(j->report, 2, "What happens");
-    part_endings(j, w);
+    if (!w->branching)
+        part_endings(j, w);
     part_weighed_hazards(j, w);
     part_weighing_grid(j, w);
     part_grounds(&m);

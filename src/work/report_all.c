@@ -18,13 +18,7 @@ static ohmen_status compile_decisions(struct job *j, struct whole *w, ohmen_erro
 {
     const struct objects *all = &j->model->of[KIND_DECISION];
     for (size_t i = 0; i < all->n; i++) {
-        const struct decision *d = all->at[i]->data;
         struct weighing *x;
-        if (d->choose.n) {
-            *array_push(j->arena, &j->not_computed) = (struct not_computed){
-                all->at[i]->id, "a decision tree, which this version stores but does not evaluate"};
-            continue;
-        }
         ohmen_error why = OHMEN_ERROR_INIT;
         ohmen_status status = weigh_compile(j->figures, all->at[i]->id, &x, &why);
         if (status == OHMEN_OK)

@@ -281,6 +281,8 @@ void part_sure_table(struct job *j, const struct weighing *w)
         return;
     sure_table(j, known->sure);
     sure_notes(j, known->sure);
+    if (w->branching)
+        part_branching_sure(j);
 }
 
 /* --- what it moves with --- */

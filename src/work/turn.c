@@ -119,6 +119,8 @@ void part_turn(struct job *j, struct weighing *w)
         turn_table(j, t);
     more_note(j, t);
     shift_note(j, t);
+    if (w->branching)
+        part_branching_turn(j);
 }
 
 const char *turn_sentence(struct job *j, const struct weighing *w)

@@ -24,6 +24,8 @@ const char *weighing_sentence(struct job *j, const struct weighing *w)
 {
     const struct alternative *best = &w->alternatives.at[w->order[0]];
     const char *currency = j->model->settings->currency;
+    if (w->branching)
+        return branching_sentence(j, w);
     if (best->n == 0)
         return arena_printf(j->arena, "Do nothing: no option is worth its money over %g years.",
                             w->horizon);
@@ -77,7 +79,7 @@ static const char *day_words(struct job *j, day d, const char *otherwise)
     return d == DAY_NONE ? otherwise : arena_str(j->arena, date_write(date, d));
 }
 
-static void option_row(struct job *j, struct block *b, const struct object *o)
+static void option_row(struct job *j, struct block *b, const struct object *o, const char *undated)
 {
     const struct option *p = o->data;
     struct report *r = j->report;
@@ -94,7 +96,7 @@ static void option_row(struct job *j, struct block *b, const struct object *o)
         else
             row_empty(r, row);
     }
-    row_text(r, row, day_words(j, p->in_service, "start"));
+    row_text(r, row, day_words(j, p->in_service, undated));
     if (p->life) {
         double life = expr_constant(p->life->expr);
         row_number(r, row, life, NULL);
@@ -113,8 +115,19 @@ void part_options(struct job *j, const struct weighing *w)
     block_column(r, b, "running", "Running cost", unit_per_year(j), STYLE_MONEY)->keep = 2;
     block_column(r, b, "in-service", "In service", "", STYLE_PLAIN)->keep = 2;
     block_column(r, b, "life", "Life", "a", STYLE_PLAIN)->keep = 1;
+    struct applied_options all = {0};
     for (size_t i = 0; i < w->decision->options.n; i++)
-        option_row(j, b, model_find(j->model, w->decision->options.at[i]));
+        *array_push(j->arena, &all) = w->decision->options.at[i];
+    if (w->branching)
+        branching_options(j->arena, w->branching, &all);
+    for (size_t i = 0; i < all.n; i++)
+        option_row(j, b, model_find(j->model, all.at[i]), w->branching ? "as applied" : "start");
+    if (all.n == 0 && w->branching)
+        r->blocks.n--;
+    else if (w->branching)
+        report_note(r, "options-words",
+                    "What is applied later is paid and comes into service that much later than its "
+                    "dates say.");
 }
 
 /* --- hazards --- */
@@ -152,7 +165,9 @@ void part_weighed_hazards(struct job *j, const struct weighing *w)
     struct report *r = j->report;
     const char *currency = j->model->settings->currency;
     struct block *b =
-        report_table(r, "weighed-hazards", "What the options do to each hazard, once in service");
+        report_table(r, "weighed-hazards",
+                     w->branching ? "Hazards whose damage is counted, as they are now"
+                                  : "What the options do to each hazard, once in service");
     block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
     block_column(r, b, "with", "With", "", STYLE_PLAIN);
     block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 3;
@@ -166,7 +181,7 @@ void part_weighed_hazards(struct job *j, const struct weighing *w)
         hazard_row(j, b, h, focus, NULL, h->now);
         for (size_t k = 1; k < w->alternatives.n; k++) {
             const struct alternative *x = &w->alternatives.at[k];
-            if (is_shown(w, k) && x->hazards[i] != h->now)
+            if (!w->branching && is_shown(w, k) && x->hazards[i] != h->now)
                 hazard_row(j, b, h, focus, x, x->hazards[i]);
         }
     }
@@ -205,6 +220,8 @@ void part_weighing(struct job *j, struct weighing *w)
     sentence(j, "to-others", perspectives_sentence(j, w));
     sentence(j, "outside-focus", outside_focus_sentence(j, w));
     part_alternatives(j, w);
+    if (w->branching)
+        part_branching(j, w);
     part_sure(j, w);
     left_out_note(j, w);
     part_options(j, w);
@@ -253,6 +270,8 @@ static void unmoved_note(struct job *j, size_t n)
 void part_weighing_grid(struct job *j, struct weighing *w)
 {
     size_t unmoved = 0;
+    if (w->branching) /* its alternatives have no one point */
+        return;
     struct block *b = report_grid(j->report, "grid", "From today's point to each option's",
                                   j->model->settings->currency);
     weigh_rank(j->figures, w);
@@ -304,10 +323,6 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
     if (status != OHMEN_OK)
         return status;
     report_heading(j->report, 1, arena_printf(j->arena, "%s: %s", w->id, w->decision->question));
-    if (w->branching) {
-        part_branching(j, w);
-        return OHMEN_OK;
-    }
     part_weighing(j, w);
     part_turn(j, w);
     part_loss(j, w);

@@ -156,7 +156,23 @@ void part_gaps_counted(struct job *j);
 /* All of a weighing that `weigh` and the report print, without the grid; and its parts. They rank
  * it where that has not been done (weigh_rank) only in part_weighing and part_weighing_grid. */
 void part_weighing(struct job *j, struct weighing *w);
-void part_branching(struct job *j, struct weighing *w);
+/* Decisions in several stages (branching.c). What is best, and what follows then, in a sentence or
+ * two; what follows alone, "" for nothing. */
+const char *branching_sentence(struct job *j, const struct weighing *w);
+const char *branching_plan(struct job *j, const struct weighing *w);
+/* The tree or the policy, what readings are worth and what to do after them. */
+void part_branching(struct job *j, const struct weighing *w);
+/* Customer time and deaths over the horizon, where there are any. */
+void part_branching_effects(struct job *j, const struct weighing *w);
+/* How far "how sure" and "what would turn it" hold for it. */
+void part_branching_sure(struct job *j);
+void part_branching_turn(struct job *j);
+/* What its memo recommends, in notes. */
+void part_branching_recommendation(struct job *j, const struct weighing *w);
+/* The options that it applies anywhere, in byte order. */
+struct branching;
+struct applied_options ARRAY_BODY(const char *);
+void branching_options(struct arena *a, const struct branching *b, struct applied_options *out);
 void part_alternatives(struct job *j, const struct weighing *w);
 void part_options(struct job *j, const struct weighing *w);
 void part_weighed_hazards(struct job *j, const struct weighing *w);

@@ -302,6 +302,10 @@ static void people_table(struct job *j, const struct weighing *w)
 
 void part_customers_and_people(struct job *j, const struct weighing *w)
 {
+    if (w->branching) {
+        part_branching_effects(j, w);
+        return;
+    }
     if (most_time(j, w) > 0)
         customers_table(j, w);
     if (w->groups.n)
@@ -374,7 +378,7 @@ const char *further_sentence(struct job *j, const struct weighing *w)
 {
     const struct people_criteria *c = people_criteria(j);
     const char *currency = j->model->settings->currency;
-    if (w->groups.n == 0 || fatality_worth(j) <= 0)
+    if ((w->groups.n == 0 && !w->branching) || fatality_worth(j) <= 0)
         return "";
     struct further f = least_further(j, w);
     if (!f.of || f.disproportion > FAR_TOO_MUCH)
@@ -412,7 +416,7 @@ const char *outside_focus_sentence(struct job *j, const struct weighing *w)
     struct text t;
     size_t small = 0;
     text_init(&t, j->arena);
-    for (size_t i = 0; w->decision->focus.n && i < w->hazards.n; i++) {
+    for (size_t i = 0; !w->branching && w->decision->focus.n && i < w->hazards.n; i++) {
         const struct compiled *now = w->hazards.at[i].now, *then = best->hazards[i];
         if (w->hazards.at[i].in_focus || now == then)
             continue;
