@@ -5,6 +5,7 @@
 #include <math.h>
 
 #include "decide/avoided.h"
+#include "decide/branching_spells.h"
 #include "decide/loss.h"
 #include "figure/compile.h"
 #include "figure/horizon.h"
@@ -19,8 +20,9 @@ struct collecting {
     const struct hazard *hazard;
     const struct hazard_exports *of;
     const struct frequency_exports *often;
-    const char *state; /* or NULL */
-    node_id weight;    /* share of time of the state; NODE_NONE: all */
+    const char *state;         /* or NULL */
+    node_id weight;            /* share of time of the state; NODE_NONE: all */
+    const node_id *weights_in; /* the same by year of the horizon; NULL: `weight` in all */
     double from, to;
 };
 
@@ -53,22 +55,42 @@ static const figure_id *ends_in(const struct collecting *c, size_t slot)
 static node_id often_in(struct collecting *c, size_t slot, size_t outcome, size_t end)
 {
     const struct hazard_exports *x = c->of;
-    const figure_id *ends = ends_in(c, slot);
+    const figure_id *ends = x->of_year ? ends_in(c, slot) : NULL;
     node_id *nodes = NEW_ARRAY(c->worth.f->arena, x->n_ends, node_id);
     node_id often = c->often->yearly ? c->often->yearly[slot] : c->often->mean;
     size_t n = 0;
     for (size_t e = 0; e < x->n_ends; e++)
         if (end == SIZE_MAX ? x->ends[e].outcome_index == outcome : e == end)
             nodes[n++] = node_of(c, ends ? ends[e] : x->ends[e].probability);
-    return weighted(c, product(c, often, worth_sum(&c->worth, n, nodes, dim_number)));
+    return product(c, often, worth_sum(&c->worth, n, nodes, dim_number));
 }
 
 static node_id often_always(struct collecting *c, size_t outcome, size_t end)
 {
     const struct hazard_exports *x = c->of;
     if (end == SIZE_MAX)
-        return weighted(c, node_of(c, x->frequency_of[outcome]));
-    return weighted(c, product(c, node_of(c, x->frequency), node_of(c, x->ends[end].probability)));
+        return node_of(c, x->frequency_of[outcome]);
+    return product(c, node_of(c, x->frequency), node_of(c, x->ends[end].probability));
+}
+
+/* By year of the horizon, each with its own share. */
+static void find_weighted_rates(struct collecting *c, size_t outcome, size_t end,
+                                struct loss_source *s)
+{
+    const struct hazard_exports *x = c->of;
+    struct arena *a = c->worth.f->arena;
+    uint32_t years = horizon_length(c->worth.f->base->settings);
+    node_id *rates = NEW_ARRAY(a, years, node_id);
+    uint32_t *of_year = NEW_ARRAY(a, years, uint32_t);
+    for (uint32_t y = 0; y < years; y++) {
+        node_id often =
+            x->of_year ? often_in(c, x->of_year[y], outcome, end) : often_always(c, outcome, end);
+        rates[y] = product(c, c->weights_in[y], often);
+        of_year[y] = y;
+    }
+    s->rates = rates;
+    s->n_rates = years;
+    s->of_year = of_year + (size_t)floor(s->from);
 }
 
 /* Slots that no year of the time has are left at the first one's rate. */
@@ -78,13 +100,17 @@ static void find_rates(struct collecting *c, size_t outcome, size_t end, struct 
     node_id *rates = NEW_ARRAY(c->worth.f->arena, x->n_yearly, node_id);
     s->rates = rates;
     s->n_rates = x->of_year ? x->n_yearly : 1;
+    if (c->weights_in) {
+        find_weighted_rates(c, outcome, end, s);
+        return;
+    }
     if (!x->of_year) {
-        rates[0] = often_always(c, outcome, end);
+        rates[0] = weighted(c, often_always(c, outcome, end));
         return;
     }
     s->of_year = x->of_year + (size_t)floor(s->from);
     for (size_t i = 0; i < x->n_yearly; i++)
-        rates[i] = often_in(c, i, outcome, end);
+        rates[i] = weighted(c, often_in(c, i, outcome, end));
 }
 
 /* --- what it costs --- */
@@ -164,6 +190,7 @@ static void add_hazard(struct collecting *c, const struct compiled *unit, double
     c->to = to;
     c->state = NULL;
     c->weight = NODE_NONE;
+    c->weights_in = NULL;
     if (x->n_states == 0)
         add_unit(c, unit);
     for (size_t i = 0; i < x->n_states; i++) {
@@ -171,6 +198,7 @@ static void add_hazard(struct collecting *c, const struct compiled *unit, double
             continue;
         c->state = x->states[i].name;
         c->weight = x->states[i].weight;
+        c->weights_in = x->states[i].weight_in;
         add_unit(c, x->states[i].unit);
     }
 }
@@ -257,6 +285,96 @@ static void add_alternative(struct collecting *c, const struct alternative *x,
                                  expected_of(c, x, s), NULL, NULL);
 }
 
+/* --- trees --- */
+
+/* Shares of years, times those of a state where the hazard is a mean over some. */
+static const node_id *shares_in(struct collecting *c, const struct spell *s,
+                                const struct hazard_state *state)
+{
+    uint32_t years = horizon_length(c->worth.f->base->settings);
+    node_id *all = NEW_ARRAY(c->worth.f->arena, years, node_id);
+    for (uint32_t y = 0; y < years; y++) {
+        all[y] = compile_const(&c->worth.b, s->share[y], dim_number, NULL);
+        if (state)
+            all[y] = product(c, state->weight_in ? state->weight_in[y] : state->weight, all[y]);
+    }
+    return all;
+}
+
+static void add_spell(struct collecting *c, const struct spell *s, const struct compiled *unit)
+{
+    const struct hazard_exports *x = unit->exports;
+    c->from = 0;
+    c->to = c->worth.w->horizon;
+    c->state = NULL;
+    c->weights_in = shares_in(c, s, NULL);
+    if (x->n_states == 0)
+        add_unit(c, unit);
+    for (size_t i = 0; i < x->n_states; i++) {
+        if (!x->states[i].unit)
+            continue;
+        c->state = x->states[i].name;
+        c->weights_in = shares_in(c, s, &x->states[i]);
+        add_unit(c, x->states[i].unit);
+    }
+}
+
+/* Expected damage on a path: what its sources cost in all years. */
+static node_id expected_on(struct collecting *c, const struct loss_sources *sources)
+{
+    node_id *terms = NEW_ARRAY(c->worth.f->arena, sources->n, node_id);
+    for (size_t i = 0; i < sources->n; i++) {
+        const struct loss_source *s = &sources->at[i];
+        node_id often = worth_sum(&c->worth, s->n_rates, s->rates, dim_frequency);
+        terms[i] = product(c, product(c, often, c->worth.money.one_year), s->damage);
+    }
+    return worth_sum(&c->worth, sources->n, terms, dim_money);
+}
+
+static void add_spell_path(struct collecting *c, const struct spell_path *p)
+{
+    size_t n = c->worth.w->hazards.n;
+    for (size_t i = 0; i < p->spells.n; i++) {
+        const struct spell *s = &p->spells.at[i];
+        for (size_t h = 0; h < n; h++)
+            if (s->world->hazards[s->hidden * n + h])
+                add_spell(c, s, s->world->hazards[s->hidden * n + h]);
+    }
+}
+
+static void add_branching(struct collecting *c, size_t i, struct loss_case *out)
+{
+    struct figures *f = c->worth.f;
+    const struct branching *b = c->worth.w->branching;
+    const char *name = c->worth.w->alternatives.at[i].name;
+    struct spell_paths all;
+    branching_spells(f->arena, b, i, &all);
+    struct loss_path *paths = NEW_ARRAY(f->arena, all.n, struct loss_path);
+    node_id *terms = NEW_ARRAY(f->arena, all.n, node_id);
+    for (size_t k = 0; k < all.n; k++) {
+        paths[k] = (struct loss_path){all.at[k].probability, new_sources(c)};
+        add_spell_path(c, &all.at[k]);
+        terms[k] = product(c, compile_const(&c->worth.b, paths[k].probability, dim_number, NULL),
+                           expected_on(c, paths[k].sources));
+    }
+    *out = (struct loss_case){name, all.n, paths, FIGURE_NONE};
+    out->expected = compiled_add(&c->worth.b, PROPERTY_HORIZON_DAMAGE, name, NULL,
+                                 worth_sum(&c->worth, all.n, terms, dim_money), NULL, NULL);
+}
+
+static ohmen_status loss_of_branching(struct figures *f, struct weighing *w,
+                                      const struct loss_case **out)
+{
+    struct loss_case *cases = NEW_ARRAY(f->arena, w->alternatives.n, struct loss_case);
+    struct collecting c;
+    begin(&c, f, w, w->unit);
+    for (size_t i = 0; i < w->alternatives.n; i++)
+        add_branching(&c, i, &cases[i]);
+    end(&c, w->unit, cases);
+    *out = cases;
+    return OHMEN_OK;
+}
+
 ohmen_status loss_of_weighing(struct figures *f, struct weighing *w, const struct loss_case **out,
                               ohmen_error *e)
 {
@@ -267,6 +385,8 @@ ohmen_status loss_of_weighing(struct figures *f, struct weighing *w, const struc
         *out = known->exports;
         return OHMEN_OK;
     }
+    if (w->branching)
+        return loss_of_branching(f, w, out);
     struct stretches *cut = NEW_ARRAY(f->arena, n, struct stretches);
     for (size_t i = 0; i < n; i++) {
         ohmen_status status = timeline_cut(f, &w->alternatives.at[i], w->horizon, &cut[i], e);

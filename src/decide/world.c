@@ -336,10 +336,14 @@ static ohmen_status evaluate_passage(struct worlds *x, struct passage *p, ohmen_
 {
     size_t n = x->hidden.n;
     double *values = NEW_ARRAY(x->f->arena, n * n, double);
+    double *spent = NEW_ARRAY(x->f->arena, n * n, double);
     ohmen_status status = figures_evaluate(x->f, e);
-    for (size_t i = 0; status == OHMEN_OK && i < n * n; i++)
+    for (size_t i = 0; status == OHMEN_OK && i < n * n; i++) {
         values[i] = means_value(x->f->means, p->to[i]);
+        spent[i] = means_value(x->f->means, p->time[i]);
+    }
     p->p = values;
+    p->spent = spent;
     return status;
 }
 

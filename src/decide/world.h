@@ -37,6 +37,7 @@ struct passage {
     const node_id *to;   /* [i * n + k]: the probability of k at the end, starting in i */
     const node_id *time; /* [i * n + k]: the mean share of the time spent in k */
     const double *p;     /* values of `to` */
+    const double *spent; /* and of `time` */
 };
 
 struct flow_of_states {
