@@ -381,7 +381,8 @@ static void look_at(struct looking *l, size_t first)
                                    .figure = input->figure,
                                    .now = input->now,
                                    .is_exact = x.u.is_exact,
-                                   .is_linear = x.u.is_linear};
+                                   .is_linear = x.u.is_linear,
+                                   .is_discrete = x.u.is_discrete};
     if (!(x.u.is_discrete ? look_at_atoms(&x, &in) : look_over_range(&x, &in))) {
         *array_push(l->f->arena, &l->out->not_possible) = in.name;
         return;
@@ -428,7 +429,7 @@ static bool look_at_states(struct looking *l, const struct unknown_state *s,
 
 static void add_state(struct looking *l, const struct unknown_state *s)
 {
-    struct information_input in = {.name = s->name, .figure = FIGURE_NONE};
+    struct information_input in = {.name = s->name, .figure = FIGURE_NONE, .is_discrete = true};
     prober_open(l->moving.prober, s->n_nodes, s->nodes);
     in.is_exact = prober_is_exact(l->moving.prober);
     in.is_linear = prober_is_linear(l->moving.prober);

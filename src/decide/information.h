@@ -95,6 +95,7 @@ struct information_input {
     double error;     /* of that: a bound as told above, not a standard error */
     bool is_exact;    /* E[targets | x] is, by the structure */
     bool is_linear;   /* the targets are straight lines in it */
+    bool is_discrete; /* it has certain values */
     /* Between its 0.1 % and 99.9 % points; rising, or in the order of the states. */
     ARRAY(struct information_change) changes;
 };
