@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Interrupts (interrupt.h). Owns the disposition of SIGINT while samples are taken, and the flag
- * that its handler sets. Invariant: once asked, the disposition is that of before. */
+/* Interrupts (interrupt.h). Owns the disposition of SIGINT while samples are taken or unknowns are
+ * looked at, and the flag that its handler sets. Invariant: once asked, the disposition is that of
+ * before. */
 #include "cli/interrupt.h"
 
 #include <signal.h>
@@ -38,7 +39,8 @@ void interrupt_end(void)
 
 void interrupt_follow(const char *phase, size_t done, size_t total)
 {
-    if (strcmp(phase, "sampling") == 0 && done < total)
+    bool can_end = strcmp(phase, "sampling") == 0 || strcmp(phase, "information") == 0;
+    if (can_end && done < total)
         install();
     else
         interrupt_end();

@@ -9,8 +9,11 @@ struct rerolling {
     struct rollback layout; /* with amounts and probabilities of its own */
     double *belief;         /* [point * n + hidden] */
     bool *known;
-    double *start, *value, *scratch;
-    size_t n; /* hidden states */
+    double *value, *scratch;
+    size_t n;            /* hidden states */
+    const size_t *which; /* target of each thing that is asked for */
+    double *all;         /* values of these */
+    size_t n_all;
 };
 
 static const node_id *amounts_of(const struct branching *b, size_t branch)
@@ -23,9 +26,9 @@ static const node_id *amounts_of(const struct branching *b, size_t branch)
     return b->nothing->amounts;
 }
 
-/* The targets: shares of the hidden states, then amounts by branch and hidden state, those of doing
- * nothing last. What is never asked for stands for the first share. */
-static node_id *targets_of(struct arena *a, const struct branching *b, size_t n_branches)
+/* All that is asked for: shares of the hidden states, then amounts by branch and hidden state,
+ * those of doing nothing last. What is never asked for stands for the first share. */
+static node_id *wanted_of(struct arena *a, const struct branching *b, size_t n_branches)
 {
     size_t n = b->worlds.hidden.n;
     node_id *all = NEW_ARRAY(a, n * (n_branches + 2), node_id);
@@ -37,6 +40,25 @@ static node_id *targets_of(struct arena *a, const struct branching *b, size_t n_
             all[n * (i + 1) + k] = amounts[k] == NODE_NONE ? all[0] : amounts[k];
     }
     return all;
+}
+
+/* Each of them once: how many, and which one each is. */
+static size_t only_different(struct arena *a, size_t n, const node_id *all, node_id *out,
+                             size_t *which)
+{
+    struct strmap known = {0};
+    size_t count = 0;
+    for (size_t i = 0; i < n; i++) {
+        const char *key = arena_printf(a, "%u", (unsigned)all[i]);
+        size_t at = (size_t)(const char *)strmap_get(&known, key);
+        if (at == 0) {
+            out[count++] = all[i];
+            at = count;
+            strmap_set(a, &known, key, (void *)at);
+        }
+        which[i] = at - 1;
+    }
+    return count;
 }
 
 static double amount(const struct rerolling *r, const struct way *x, const double *values,
@@ -71,7 +93,8 @@ static void move_on(struct rerolling *r, const struct way *x, double *belief)
     }
 }
 
-/* Beliefs at the beginning of a branch; its probability. */
+/* Beliefs at the beginning of a branch; its probability. What cannot be read leads to what was
+ * believed there before: others may lead to the same place. */
 static double begin(const struct rerolling *r, const struct point *p, const struct way *x,
                     const double *at, double *belief)
 {
@@ -85,7 +108,7 @@ static double begin(const struct rerolling *r, const struct point *p, const stru
     for (size_t k = 0; k < r->n; k++)
         sum += at[k] * x->likelihood[k];
     for (size_t k = 0; k < r->n; k++)
-        belief[k] = sum > 0 ? at[k] * x->likelihood[k] / sum : 0;
+        belief[k] = sum > 0 ? at[k] * x->likelihood[k] / sum : x->belief[k];
     return sum;
 }
 
@@ -147,21 +170,16 @@ static double roll(void *ctx, const double *values, size_t which)
     return which == 0 ? 0 : worth + begins(r, which);
 }
 
-static double worth_of(void *ctx, const double *values, size_t which)
-{
-    struct rerolling *r = ctx;
-    prepare(r, values);
-    rollback_values(&r->layout, isa_best(), r->value);
-    return roll(ctx, values, which);
-}
-
 /* Ties by name. */
-static double best_of(void *ctx, const double *values, size_t *which)
+static double best_of(void *ctx, const double *targets, size_t *which)
 {
     struct rerolling *r = ctx;
     const struct weighing *w = r->b->weighing;
+    const double *values = r->all;
     double best = 0;
     *which = 0;
+    for (size_t i = 0; i < r->n_all; i++)
+        r->all[i] = targets[r->which[i]];
     prepare(r, values);
     rollback_values(&r->layout, isa_best(), r->value);
     for (size_t i = 1; i < w->alternatives.n; i++) {
@@ -191,9 +209,79 @@ struct choice choice_of_branching(struct arena *a, const struct branching *b)
     r->known = NEW_ARRAY(a, b->points.n, bool);
     r->value = NEW_ARRAY(a, b->laid_out->n, double);
     r->scratch = NEW_ARRAY(a, n, double);
-    return (struct choice){.ctx = r,
-                           .n_targets = n * (branches + 2),
-                           .targets = targets_of(a, b, branches),
-                           .best = best_of,
-                           .worth = worth_of};
+    r->n_all = n * (branches + 2);
+    r->all = NEW_ARRAY(a, r->n_all, double);
+    size_t *which = NEW_ARRAY(a, r->n_all, size_t);
+    node_id *targets = NEW_ARRAY(a, r->n_all, node_id);
+    size_t count = only_different(a, r->n_all, wanted_of(a, b, branches), targets, which);
+    r->which = which;
+    return (struct choice){.ctx = r, .n_targets = count, .targets = targets, .best = best_of};
+}
+
+/* --- any decision --- */
+
+struct choice choice_of_decision(struct arena *a, const struct figures *f, struct weighing *w)
+{
+    return w->branching ? choice_of_branching(a, w->branching) : choice_of_weighing(a, f, w);
+}
+
+ohmen_status branching_sample(struct figures *f, struct arena *a, const struct choice *c,
+                              const struct sampling_plan *plan, struct sampling *out,
+                              ohmen_error *e)
+{
+    struct sampler *s;
+    struct sampling_plan once = *plan;
+    once.n_judged = 0;
+    once.precision = 0;
+    if (c->n_targets > BRANCHING_SAMPLED)
+        return error_set(e, OHMEN_COMPUTE, "the tree is too large to be rolled back in samples");
+    ohmen_status status = sampler_new(a, f->means, &once, c->n_targets, c->targets, &s, e);
+    return status == OHMEN_OK ? sampler_run(a, s, c->n_targets, c->targets, out, NULL, e) : status;
+}
+
+/* --- unknown states --- */
+
+static bool reaches(const struct figures *f, const struct weighing *w, const struct object *o)
+{
+    const struct building under = {.figures = (struct figures *)f,
+                                   .variant = w->alternatives.at[0].variant};
+    return ((const struct state *)o->data)->is.n > 0 && compiled_of(&under, o->id) != NULL;
+}
+
+static struct unknown_state state_of(struct arena *a, const struct figures *f,
+                                     const struct weighing *w, const struct object *o)
+{
+    const struct building under = {.figures = (struct figures *)f,
+                                   .variant = w->alternatives.at[0].variant};
+    const struct compiled *u = compiled_of(&under, o->id);
+    const struct rows *rows = state_values(o->data);
+    node_id *nodes = NEW_ARRAY(a, rows->n, node_id);
+    double *probabilities = NEW_ARRAY(a, rows->n, double);
+    double *values = NEW_ARRAY(a, rows->n * rows->n, double);
+    for (size_t i = 0; i < rows->n; i++) {
+        figure_id id = compiled_figure(f, u, PROPERTY_SHARE, rows->keys[i], NULL);
+        nodes[i] = figure_at(f, id)->node;
+        probabilities[i] = figure_value(f, id);
+        values[i * rows->n + i] = 1;
+    }
+    return (struct unknown_state){.name = o->id,
+                                  .n_nodes = rows->n,
+                                  .nodes = nodes,
+                                  .n = rows->n,
+                                  .states = rows->keys,
+                                  .probabilities = probabilities,
+                                  .values = values};
+}
+
+size_t states_of_decision(struct arena *a, const struct figures *f, const struct weighing *w,
+                          const struct unknown_state **out)
+{
+    const struct objects *all = &f->base->of[KIND_STATE];
+    struct unknown_state *states = NEW_ARRAY(a, all->n, struct unknown_state);
+    size_t n = 0;
+    for (size_t i = 0; i < all->n; i++)
+        if (reaches(f, w, all->at[i]))
+            states[n++] = state_of(a, f, w, all->at[i]);
+    *out = states;
+    return n;
 }

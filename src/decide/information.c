@@ -381,7 +381,8 @@ static void look_at(struct looking *l, size_t first)
                                    .figure = input->figure,
                                    .now = input->now,
                                    .is_exact = x.u.is_exact,
-                                   .is_linear = x.u.is_linear};
+                                   .is_linear = x.u.is_linear,
+                                   .is_discrete = x.u.is_discrete};
     if (!(x.u.is_discrete ? look_at_atoms(&x, &in) : look_over_range(&x, &in))) {
         *array_push(l->f->arena, &l->out->not_possible) = in.name;
         return;
@@ -426,9 +427,21 @@ static bool look_at_states(struct looking *l, const struct unknown_state *s,
     return true;
 }
 
+/* The inputs that make its probabilities. */
+static void see_state(struct looking *l, const struct unknown_state *s)
+{
+    for (size_t k = 0; k < s->n_nodes; k++) {
+        size_t n;
+        const uint32_t *inputs = graph_uncertain(l->f->graph, s->nodes[k], &n);
+        for (size_t i = 0; i < n; i++)
+            l->seen[inputs[i]] = true;
+    }
+}
+
 static void add_state(struct looking *l, const struct unknown_state *s)
 {
-    struct information_input in = {.name = s->name, .figure = FIGURE_NONE};
+    struct information_input in = {.name = s->name, .figure = FIGURE_NONE, .is_discrete = true};
+    see_state(l, s);
     prober_open(l->moving.prober, s->n_nodes, s->nodes);
     in.is_exact = prober_is_exact(l->moving.prober);
     in.is_linear = prober_is_linear(l->moving.prober);
@@ -499,6 +512,13 @@ static bool goes_on(struct information *out, const struct information_watch *wat
     return !out->interrupted;
 }
 
+/* Probabilities of an unknown state are known together, with it. */
+static bool is_of_state(const struct looking *l, figure_id id)
+{
+    const struct object *o = l->f->units.at[figure_at(l->f, id)->unit]->object;
+    return o && o->kind == KIND_STATE && ((const struct state *)o->data)->is.n;
+}
+
 static void look_at_all(struct looking *l, size_t n_states, const struct unknown_state *states,
                         const struct information_watch *watch)
 {
@@ -506,7 +526,7 @@ static void look_at_all(struct looking *l, size_t n_states, const struct unknown
     size_t n = l->moving.inputs.n, n_first = 0;
     size_t *first = NEW_ARRAY(l->f->arena, n, size_t);
     for (size_t i = 0; i < n; i++)
-        if (unknown_is_first(&l->moving, i))
+        if (unknown_is_first(&l->moving, i) && !is_of_state(l, l->moving.inputs.at[i].figure))
             first[n_first++] = i;
     out->n_all = n_first + n_states;
     for (; out->n_looked < out->n_all && goes_on(out, watch); out->n_looked++)

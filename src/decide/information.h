@@ -95,6 +95,7 @@ struct information_input {
     double error;     /* of that: a bound as told above, not a standard error */
     bool is_exact;    /* E[targets | x] is, by the structure */
     bool is_linear;   /* the targets are straight lines in it */
+    bool is_discrete; /* it has certain values */
     /* Between its 0.1 % and 99.9 % points; rising, or in the order of the states. */
     ARRAY(struct information_change) changes;
 };
@@ -133,7 +134,7 @@ struct information_sample {
     const size_t *root; /* of each target, among those of `values` */
 };
 
-/* That of a decision, which is sampled for decide/sure.h anyway. Lives in `a`. */
+/* That of a decision with options, which is sampled for decide/sure.h anyway. Lives in `a`. */
 struct sure;
 struct information_sample information_sample_of(struct arena *a, const struct figures *f,
                                                 const struct sure *s);
@@ -149,6 +150,23 @@ void information_find(struct figures *f, const struct choice *c,
  * standard error. Scratch of `a`. */
 struct sampled information_perfect(struct arena *a, const struct information *x,
                                    const struct sampling *s);
+
+/* --- of a decision --- */
+
+/* What information is worth for a decision with options or for a tree, which is rolled back anew
+ * wherever something is known; its unknown states among the rest. */
+struct information_whole {
+    const struct weighing *w;
+    struct choice choice;
+    struct information all;
+    bool has_sample;           /* otherwise what follows is not known */
+    struct sampled everything; /* of knowing everything */
+    struct sampling sample;
+};
+/* weigh_rank has been called. `sure`: NULL where nothing could be sampled. Lives in `a`. */
+void information_of_decision(struct figures *f, struct arena *a, struct weighing *w,
+                             const struct sure *sure, const struct sampling_plan *plan,
+                             const struct information_watch *watch, struct information_whole *out);
 
 /* --- by name --- */
 

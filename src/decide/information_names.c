@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* What information is worth, by name, and what knowing everything is (information.h). Owns nothing
  * beyond the arenas it is given. */
+#include "decide/branching_choice.h"
 #include "decide/information.h"
 
 #include <string.h>
@@ -80,26 +81,55 @@ static ohmen_status pick_input(struct figures *f, const char *name, struct infor
                      nearest_hint(f->arena, &near));
 }
 
+/* A tree is sampled once more, all of it. */
+static void find_in_tree(struct figures *f, struct arena *a, const struct sampling_plan *plan,
+                         const struct information_watch *watch, size_t n_states,
+                         const struct unknown_state *states, struct information_whole *out)
+{
+    out->has_sample = branching_sample(f, a, &out->choice, plan, &out->sample, NULL) == OHMEN_OK;
+    information_find(f, &out->choice, NULL, n_states, states, watch, &out->all);
+    if (out->has_sample)
+        out->everything = information_perfect(a, &out->all, &out->sample);
+}
+
+void information_of_decision(struct figures *f, struct arena *a, struct weighing *w,
+                             const struct sure *sure, const struct sampling_plan *plan,
+                             const struct information_watch *watch, struct information_whole *out)
+{
+    const struct unknown_state *states;
+    size_t n_states = states_of_decision(a, f, w, &states);
+    struct information_sample sample = {0};
+    *out = (struct information_whole){.w = w, .choice = choice_of_decision(a, f, w)};
+    if (w->branching) {
+        find_in_tree(f, a, plan, watch, n_states, states, out);
+        return;
+    }
+    out->has_sample = sure != NULL;
+    if (sure) {
+        sample = information_sample_of(a, f, sure);
+        out->everything = sure->of[w->order[0]].regret;
+        out->sample = sure->sample;
+    }
+    information_find(f, &out->choice, sure ? &sample : NULL, n_states, states, watch, &out->all);
+}
+
 ohmen_status information_value_find(struct figures *f, const char *name,
                                     const struct sampling_plan *plan, struct information_value *out,
                                     ohmen_error *e)
 {
     struct weighing *w;
     struct sure *sure = NEW(f->arena, struct sure);
-    struct choice *choice = NEW(f->arena, struct choice);
-    struct information *all = NEW(f->arena, struct information);
+    struct information_whole *whole = NEW(f->arena, struct information_whole);
     const char *mark = strstr(name, MARK);
     ohmen_status status = weigh_ranked(f, arena_strn(f->arena, name, (size_t)(mark - name)), &w, e);
     if (status == OHMEN_OK)
         status = sure_find(f, f->arena, w, plan, sure, e);
     if (status != OHMEN_OK)
         return status;
-    struct information_sample sample = information_sample_of(f->arena, f, sure);
-    struct information_value v = {.name = name, .weighing = w, .information = all};
-    *choice = choice_of_weighing(f->arena, f, w);
-    information_find(f, choice, &sample, 0, NULL, NULL, all);
-    v.everything = sure->of[w->order[0]].regret;
-    v.sample = sure->sample;
+    information_of_decision(f, f->arena, w, sure, plan, NULL, whole);
+    struct information_value v = {.name = name, .weighing = w, .information = &whole->all};
+    v.everything = whole->everything;
+    v.sample = whole->sample;
     status = mark[strlen(MARK)] ? pick_input(f, name, &v, e) : OHMEN_OK;
     if (status == OHMEN_OK)
         *out = v;

@@ -17,7 +17,6 @@ const char *way_words_long(struct job *j, const struct branching *b, const struc
  * follows at once behind a branch: "" where nothing does. */
 const char *following_sentence(struct job *j, const struct branching *b, const struct way *x);
 /* A probability in a sentence: "69 %". */
-const char *percent_words(struct job *j, double x);
 
 /* The branch of the first choice that an alternative begins with; NULL where there is none, or
  * where it depends on what is seen. */

@@ -4,12 +4,6 @@
 
 enum { MOST_READINGS = 4 /* in one sentence */ };
 
-const char *percent_words(struct job *j, double x)
-{
-    char number[32];
-    return arena_printf(j->arena, "%s %%", number_text(number, x, STYLE_PERCENT));
-}
-
 const struct way *first_way(const struct branching *b, const struct alternative *x)
 {
     const struct point *p = &b->points.at[0];

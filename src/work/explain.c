@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The derivation of a figure: formula by formula, down to inputs with their source. And of what is
  * worked out from figures and is none of the graph: values at which a decision turns, what it
- * leans on, swings, elasticities, and how sure it is. */
+ * leans on, swings, elasticities, how sure it is, and what more information is worth. */
 #include "decide/interval.h"
 #include "work/loss.h"
 #include "work/spreads.h"
@@ -264,6 +264,20 @@ static ohmen_status explain_loss(struct job *j, const struct explain_request *q,
     return OHMEN_OK;
 }
 
+static ohmen_status explain_information(struct job *j, const struct explain_request *q,
+                                        ohmen_error *e)
+{
+    struct information_value value;
+    ohmen_status status = information_value_find(j->figures, q->figure, &j->plan, &value, e);
+    if (status != OHMEN_OK)
+        return status;
+    struct consumed c = information_consumed(j, &value);
+    part_information_head(j, &value);
+    derive(j, q, &c);
+    part_information_method(j, &value);
+    return OHMEN_OK;
+}
+
 /* What is worked out from figures and is none of the graph, by the form of its name. */
 static const struct worked_out {
     bool (*is_named)(const char *name);
@@ -272,6 +286,7 @@ static const struct worked_out {
     {turn_is_named, explain_turn},   {lean_is_named, explain_lean},
     {swing_is_named, explain_swing}, {elasticity_is_named, explain_elasticity},
     {sure_is_named, explain_sure},   {loss_is_named, explain_loss},
+    {information_is_named, explain_information},
 };
 
 static const struct worked_out *worked_out_named(const char *name)

@@ -332,6 +332,9 @@ static void how_sure(struct memo *m)
     const char *words = sure_sentence(m->j, m->w);
     if (*words)
         report_note(m->j->report, "how-sure", "%s", words);
+    words = information_sentence(m->j, m->w);
+    if (*words)
+        report_note(m->j->report, "information-sentence", "%s", words);
 }
 
 static void part_recommendation(struct memo *m)
@@ -405,6 +408,7 @@ static void part_how_sure(struct memo *m)
     part_sure(m->j, m->w);
     part_swings(m->j, m->w);
     part_map(m->j, m->w, NULL, NULL, NULL);
+    part_information_table(m->j, m->w);
     part_sure_moves(m->j, m->w);
     part_elasticities(m->j, m->w);
 }

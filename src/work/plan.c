@@ -39,6 +39,16 @@ static bool watch(void *ctx, size_t batches, size_t most)
     return false;
 }
 
+bool job_goes_on(struct job *j, const char *phase, size_t done, size_t total)
+{
+    job_progress(j, phase, done, total);
+    if (done == total || !j->reg->stop || !j->reg->stop(j->reg->stop_ctx))
+        return true;
+    if (!j->interrupted)
+        interrupt(j);
+    return false;
+}
+
 static unsigned log2_above(size_t n)
 {
     unsigned k = 0;

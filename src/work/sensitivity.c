@@ -18,6 +18,7 @@ static ohmen_status write_sensitivity(struct job *j, struct weighing *w,
     ohmen_status status = part_map(j, w, q->x, q->y, e);
     if (status != OHMEN_OK)
         return status;
+    part_information(j, w);
     part_sure_moves(j, w);
     part_elasticities(j, w);
     part_turn(j, w);

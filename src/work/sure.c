@@ -33,6 +33,11 @@ static const struct known_sure *sure_of(struct job *j, const struct weighing *w)
     return known;
 }
 
+const struct sure *known_sure(struct job *j, const struct weighing *w)
+{
+    return w->alternatives.n < 2 ? NULL : sure_of(j, w)->sure;
+}
+
 /* --- words --- */
 
 static size_t count_of(const struct sure *x)
@@ -40,7 +45,7 @@ static size_t count_of(const struct sure *x)
     return x->sample.sets * x->sample.points;
 }
 
-static const char *percent(struct job *j, double x)
+const char *percent_words(struct job *j, double x)
 {
     char number[32];
     return arena_printf(j->arena, "%s %%", number_text(number, x, STYLE_PERCENT));
@@ -51,8 +56,7 @@ static const char *money(struct job *j, double x)
     return money_text(j->arena, x, j->model->settings->currency);
 }
 
-/* A standard error, of which more than two digits say nothing. */
-static double two_digits(double x)
+double two_digits(double x)
 {
     double unit = 1;
     if (!(x > 0))
@@ -103,7 +107,7 @@ static const char *most_often_words(struct job *j, const struct sure *x)
     if (most == x->best)
         return "";
     return arena_printf(j->arena, " Most often %s is best, in %s; but not on average.",
-                        alternative_noun(most), percent(j, sure_at(x, most)->best.value));
+                        alternative_noun(most), percent_words(j, sure_at(x, most)->best.value));
 }
 
 static const char *regret_words(struct job *j, const struct sure *x)
@@ -135,7 +139,7 @@ static const char *sentence_of(struct job *j, const struct sure *x)
                             name, count_of(x), most_often_words(j, x), regret_words(j, x));
     return arena_printf(
         j->arena, "%s is the best alternative in %s of what is possible (standard error %s).%s %s",
-        name, percent(j, best->best.value), percent(j, two_digits(best->best.error)),
+        name, percent_words(j, best->best.value), percent_words(j, two_digits(best->best.error)),
         most_often_words(j, x), regret_words(j, x));
 }
 
@@ -262,7 +266,7 @@ static void sure_notes(struct job *j, const struct sure *x)
         "Means are computed; all else here comes from %s. Standard errors are at most %s of "
         "the points, %s of being best, %s of being worth it, and %s of regret.",
         sampling_words(j, &x->sample), money(j, two_digits(g.point)),
-        percent(j, two_digits(g.best)), percent(j, two_digits(g.worth_it)),
+        percent_words(j, two_digits(g.best)), percent_words(j, two_digits(g.worth_it)),
         money(j, two_digits(g.regret)));
 }
 
@@ -371,13 +375,13 @@ static const char *value_words(struct job *j, const struct sure_value *v, double
 {
     if (v->kind == SURE_MOVES)
         return plain_text(j, x);
-    return is_money(v) ? money(j, x) : percent(j, x);
+    return is_money(v) ? money(j, x) : percent_words(j, x);
 }
 
 /* "5 %" */
 static const char *below_words(struct job *j, const struct sure_value *v)
 {
-    return percent(j, spread_probability[v->kind - SURE_P5]);
+    return percent_words(j, spread_probability[v->kind - SURE_P5]);
 }
 
 static const char *formula_of(struct job *j, const struct sure_value *v)

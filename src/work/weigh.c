@@ -324,6 +324,7 @@ static ohmen_status run_weigh(struct job *j, void *ctx, ohmen_error *e)
         return status;
     report_heading(j->report, 1, arena_printf(j->arena, "%s: %s", w->id, w->decision->question));
     part_weighing(j, w);
+    part_information_briefly(j, w);
     part_turn(j, w);
     part_loss(j, w);
     part_weighing_grid(j, w);

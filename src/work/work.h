@@ -8,6 +8,7 @@
 #define WORK_WORK_H
 
 #include "decide/elasticity.h"
+#include "decide/information.h"
 #include "decide/lean.h"
 #include "decide/sure.h"
 #include "decide/swing.h"
@@ -69,8 +70,9 @@ struct job {
         size_t batches, points; /* once it was interrupted: what was asked for */
     } sampled;
     /* By decision, once they were asked for: struct turns (turn.c), struct known_sure (sure.c),
-     * struct known_swings (swings.c), struct known_loss (loss.c, and of the register). */
-    struct strmap turns, sures, swings, losses;
+     * struct known_swings (swings.c), struct known_loss (loss.c, and of the register), struct
+     * known_information (information.c). */
+    struct strmap turns, sures, swings, losses, informations;
     struct ohmen_report *out;
     struct report *report; /* &out->report */
     bool interrupted;      /* the sampling, by who was asked whether to stop */
@@ -88,6 +90,8 @@ ohmen_status job_do(ohmen_register *r, enum store_mode mode, const ohmen_query *
 
 /* Tells whoever watches the register. */
 void job_progress(const struct job *j, const char *phase, size_t done, size_t total);
+/* Between two steps of a phase: tells him, and whether to go on: not once he has asked to stop. */
+bool job_goes_on(struct job *j, const char *phase, size_t done, size_t total);
 
 /* Steps of a job, each including those before it. */
 ohmen_status job_load_objects(struct job *j, ohmen_error *e); /* at, objects */
@@ -232,6 +236,14 @@ void part_sure_table(struct job *j, const struct weighing *w);
 void part_sure(struct job *j, const struct weighing *w);
 void part_sure_moves(struct job *j, const struct weighing *w);
 
+/* The sample of the decision, of which there is one a job; NULL where nothing can be sampled, or
+ * doing nothing is the only alternative. */
+const struct sure *known_sure(struct job *j, const struct weighing *w);
+
+/* "12.3 %"; a standard error, of which more than two digits say nothing (sure.c). */
+const char *percent_words(struct job *j, double x);
+double two_digits(double x);
+
 /* The derivation of one of these numbers. */
 void part_sure_head(struct job *j, const struct sure_value *v);
 void part_sure_method(struct job *j, const struct sure_value *v);
@@ -241,6 +253,16 @@ struct consumed sure_consumed(struct job *j, const struct sure_value *v);
  * as they are: sentences, a table, a curve. figures_evaluate has been called. */
 void part_loss(struct job *j, const struct weighing *w);
 void part_loss_register(struct job *j, const struct hazards *h);
+/* What finding something out before deciding is worth (information.c). The weighing is ranked. A
+ * sentence, "" where doing nothing is the only alternative or nothing is unknown; with the few
+ * quantities that are worth most as a table; with all that are worth something. */
+const char *information_sentence(struct job *j, struct weighing *w);
+void part_information_briefly(struct job *j, struct weighing *w);
+void part_information_table(struct job *j, struct weighing *w);
+void part_information(struct job *j, struct weighing *w);
+void part_information_head(struct job *j, const struct information_value *v);
+void part_information_method(struct job *j, const struct information_value *v);
+struct consumed information_consumed(struct job *j, const struct information_value *v);
 
 /* The alternative whose worth is looked at: the best one; where that is to do nothing the best
  * option, NULL where there is none (swings.c). */
