@@ -284,7 +284,7 @@ struct decision {
     day review;
     struct names focus, options, sees;
     struct rows choose, subtrees; /* of struct list of struct step * */
-    struct quantity *every;
+    struct quantity *every, *risk_tolerance;
 };
 
 struct plan {
