@@ -264,14 +264,24 @@ static ohmen_status explain_loss(struct job *j, const struct explain_request *q,
     return OHMEN_OK;
 }
 
+static ohmen_status explain_utility(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct consumed c;
+    ohmen_status status = utility_value_find(j, q->figure, &c, e);
+    if (status == OHMEN_OK)
+        derive(j, q, &c);
+    return status;
+}
+
 /* What is worked out from figures and is none of the graph, by the form of its name. */
 static const struct worked_out {
     bool (*is_named)(const char *name);
     ohmen_status (*explain)(struct job *j, const struct explain_request *q, ohmen_error *e);
 } worked_out[] = {
-    {turn_is_named, explain_turn},   {lean_is_named, explain_lean},
-    {swing_is_named, explain_swing}, {elasticity_is_named, explain_elasticity},
-    {sure_is_named, explain_sure},   {loss_is_named, explain_loss},
+    {turn_is_named, explain_turn},       {lean_is_named, explain_lean},
+    {swing_is_named, explain_swing},     {elasticity_is_named, explain_elasticity},
+    {sure_is_named, explain_sure},       {loss_is_named, explain_loss},
+    {utility_is_named, explain_utility},
 };
 
 static const struct worked_out *worked_out_named(const char *name)
