@@ -623,6 +623,7 @@ CREATE TABLE "decision"( -- A question with its options or its tree
     "owner" TEXT, -- Who decides
     "review" TEXT, -- When it is to be looked at again
     "every" TEXT, -- The choice comes again after this time
+    "risk_tolerance" TEXT, -- Of exponential utility: the greater, the less a wide spread of damage counts
     "note" TEXT, -- Anything else
     PRIMARY KEY("id")
 ) STRICT, WITHOUT ROWID;

@@ -291,7 +291,7 @@ struct decision {
     day review;
     struct names focus, options, sees;
     struct rows choose, subtrees; /* of struct list of struct step * */
-    struct quantity *every;
+    struct quantity *every, *risk_tolerance;
     int64_t beliefs;
 };
 

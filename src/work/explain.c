@@ -278,6 +278,15 @@ static ohmen_status explain_information(struct job *j, const struct explain_requ
     return OHMEN_OK;
 }
 
+static ohmen_status explain_utility(struct job *j, const struct explain_request *q, ohmen_error *e)
+{
+    struct consumed c;
+    ohmen_status status = utility_value_find(j, q->figure, &c, e);
+    if (status == OHMEN_OK)
+        derive(j, q, &c);
+    return status;
+}
+
 /* What is worked out from figures and is none of the graph, by the form of its name. */
 static const struct worked_out {
     bool (*is_named)(const char *name);
@@ -286,7 +295,7 @@ static const struct worked_out {
     {turn_is_named, explain_turn},   {lean_is_named, explain_lean},
     {swing_is_named, explain_swing}, {elasticity_is_named, explain_elasticity},
     {sure_is_named, explain_sure},   {loss_is_named, explain_loss},
-    {information_is_named, explain_information},
+    {information_is_named, explain_information}, {utility_is_named, explain_utility},
 };
 
 static const struct worked_out *worked_out_named(const char *name)

@@ -391,6 +391,7 @@ static void part_shown(struct job *j, struct known_loss *x, const struct weighin
 void part_loss(struct job *j, const struct weighing *w)
 {
     part_shown(j, loss_of_decision(j, w), w);
+    part_utility(j, w);
 }
 
 void part_loss_register(struct job *j, const struct hazards *h)

@@ -42,6 +42,16 @@ ohmen_status loss_value_find(struct job *j, const char *name, struct loss_value 
 void part_loss_head(struct job *j, const struct loss_value *v);
 void part_loss_method(struct job *j, const struct loss_value *v);
 struct consumed loss_consumed(struct job *j, const struct loss_value *v);
+/* --- exponential utility (utility.c) --- */
+
+/* Certainty equivalents of the alternatives; nothing where the decision states no risk
+ * tolerance. */
+void part_utility(struct job *j, const struct weighing *w);
+/* "D-BUS.certainty-equivalent[FIT-87B]": its derivation, of which the head is printed. */
+bool utility_is_named(const char *name);
+ohmen_status utility_value_find(struct job *j, const char *name, struct consumed *out,
+                                ohmen_error *e);
+
 /* Compiles what a figure OWNER.horizon-damage belongs to; does nothing for other names. */
 ohmen_status loss_prepare(struct job *j, const char *figure, ohmen_error *e);
 
