@@ -415,6 +415,19 @@ static void look_at_decision(struct loaded *l, const char *text, struct weighing
     information_find(l->figures, c, &sample, 0, NULL, NULL, x);
 }
 
+/* Each is worth no more than everything, which comes from a sample. */
+static void check_bounds(const struct sure *sure, const struct information *x)
+{
+    struct sampled all = sure->of[sure->weighing->order[0]].regret;
+    for (size_t i = 0; i < x->list.n; i++) {
+        const struct information_input *in = &x->list.at[i];
+        ck_assert_msg(in->worth <= all.value + 4 * all.error + in->error, "%s: %g of %g +- %g",
+                      in->name, in->worth, all.value, all.error);
+        ck_assert(i == 0 || in->worth <= x->list.at[i - 1].worth);
+        ck_assert_int_eq(in->worth > 0, i < x->n_turning);
+    }
+}
+
 /* The case of Howard as a register, against its third alternative; and what knowing everything is
  * worth, which is one quantity here, from a sample: the regret of the best alternative. */
 START_TEST(howard_as_a_register)
@@ -437,6 +450,44 @@ START_TEST(howard_as_a_register)
     check("sample", everything.value, regret.value, EXACT);
     check("its error", everything.error, regret.error, 1e-9);
     ck_assert(fabs(everything.value - 22) <= 4 * everything.error && everything.error < 0.3);
+}
+END_TEST
+
+/* The hand calculation of docs/methods.md, digits by a program of its own. */
+START_TEST(the_wall_and_the_masts)
+{
+    static const char *const text = SETTINGS
+        "rates: {slip: {name: S, per: a, is: {median: 0.3 per a, error-factor: 4}}}\n"
+        "values: {crane: {name: C, is: {values: {here: {is: 2 kEUR, p: 70 %}, away: {is: 9 kEUR, "
+        "p: rest}}}}, paint: {name: P, is: {shape: uniform, from: 90 EUR, to: 110 EUR}}}\n"
+        "hazards: {H: {name: H, frequency: slip, " LOST(
+            "crane + paint") "}}\n"
+                             "options:\n"
+                             "  WALL: {name: W, invest: {is: {shape: triangular, from: 4 kEUR, "
+                             "most-likely: 6 kEUR, to: "
+                             "14 kEUR}}, change: {hazards: {H: {frequency: 0.3 * was}}}}\n"
+                             "  MOVE: {name: M, invest: 16 kEUR, excludes: [WALL], change: "
+                             "{hazards: {H: {frequency: 0 "
+                             "* was}}}}\n"
+                             "decisions: {D: {question: What?, options: [WALL, MOVE]}}\n";
+    struct loaded l;
+    struct weighing *w;
+    struct information x;
+    struct sure sure;
+    look_at_decision(&l, text, &w, &sure, &x);
+    ck_assert_uint_eq(x.list.n, 4);
+    ck_assert_uint_eq(x.n_turning, 3);
+    check("now", x.worth, 1954.5810979031157, LINE);
+    const struct information_input *slip = lines_input(&x, "slip.rate");
+    check("slip", slip->worth, 2664.0984885300277, LINE);
+    ck_assert_uint_eq(slip->changes.n, 2);
+    check("low", slip->changes.at[0].at, 0.34390074600260684, LINE);
+    check("below", slip->changes.at[0].probability, 0.5643638247774355, LINE);
+    check("high", slip->changes.at[1].at, 0.8024350740060825, LINE);
+    check("above", slip->changes.at[1].probability, 0.12153031909701084, LINE);
+    check("crane", lines_input(&x, "crane.value")->worth, 2488.9584930069204, LINE);
+    ck_assert(lines_input(&x, "paint.value")->worth == 0);
+    check_bounds(&sure, &x);
 }
 END_TEST
 
@@ -625,19 +676,6 @@ static const struct quantity *quantity_of(const struct loaded *l, const char *fi
     return l->figures->inputs.at[graph_at(l->figures->graph, node)->extra];
 }
 
-/* Each is worth no more than everything, which comes from a sample. */
-static void check_bounds(const struct sure *sure, const struct information *x)
-{
-    struct sampled all = sure->of[sure->weighing->order[0]].regret;
-    for (size_t i = 0; i < x->list.n; i++) {
-        const struct information_input *in = &x->list.at[i];
-        ck_assert_msg(in->worth <= all.value + 4 * all.error + in->error, "%s: %g of %g +- %g",
-                      in->name, in->worth, all.value, all.error);
-        ck_assert(i == 0 || in->worth <= x->list.at[i - 1].worth);
-        ck_assert_int_eq(in->worth > 0, i < x->n_turning);
-    }
-}
-
 START_TEST(random_registers)
 {
     struct random r = random_seed(20261202 + (uint64_t)_i);
@@ -680,6 +718,7 @@ int main(void)
     tcase_add_test(t, both_and_each);
     tcase_add_test(t, interrupted);
     tcase_add_test(t, howard_as_a_register);
+    tcase_add_test(t, the_wall_and_the_masts);
     tcase_add_test(t, names);
     tcase_add_test(t, stated_anew);
     tcase_add_test(t, not_possible);
