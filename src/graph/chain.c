@@ -123,11 +123,11 @@ static void add_terms(const struct series *s, struct state *t)
     compensated_add(&t->slope, t->weight * u);
 }
 
-/* Terms behind k jumps are at most k^2 times their weights, which fall as powers of jumps / k; and
- * after twice as many jumps as there are states all ways have been met. */
+/* Terms behind k jumps are at most k^2 times their weights, which fall as powers of jumps / k.
+ * While the sum is 0, since no way has been met yet or there is none, weights alone tell. */
 static bool is_enough(const struct series *s, uint32_t flow, const struct state *t)
 {
-    if (t->k < s->jumps || t->k < 2 * (double)s->c->n_states)
+    if (t->k < s->jumps)
         return false;
     double rest = t->weight * (t->k + 2) / (t->k + 2 - s->jumps);
     double least = sum_of(t->value), slope = fabs(sum_of(t->slope));

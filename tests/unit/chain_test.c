@@ -298,6 +298,23 @@ START_TEST(slopes_of_small_rates)
 }
 END_TEST
 
+/* Around a ring of equal rates r, back to the beginning: the slope by the last rate is the integral
+ * of being in the last state, r^14 u^14 / 14!, which is r^14 t^15 / 15! but for parts of r t. It
+ * needs 15 jumps where the value needs none. */
+START_TEST(slopes_keep_their_digits)
+{
+    struct world w = {.c = {.n_states = MOST_STATES, .years = 2}};
+    double back[MOST_FLOWS] = {0}, want = 2;
+    w.c.from = w.from, w.c.to = w.to;
+    for (uint32_t k = 0; k < MOST_STATES; k++)
+        flow(&w, k, (k + 1) % MOST_STATES, 1e-7);
+    for (int k = 2; k <= 15; k++)
+        want *= 2e-7 / k;
+    chain_backward(&w.c, w.x, 1, back);
+    expect(back[MOST_STATES - 1], want, 1e-6);
+}
+END_TEST
+
 /* ---- nodes ---- */
 
 START_TEST(equal_chains_are_one_node)
@@ -345,6 +362,7 @@ int main(void)
     tcase_add_test(t, means_are_integrals);
     tcase_add_test(t, slopes_are_quotients_of_differences);
     tcase_add_test(t, slopes_of_small_rates);
+    tcase_add_test(t, slopes_keep_their_digits);
     tcase_add_test(t, equal_chains_are_one_node);
     suite_add_tcase(s, t);
     SRunner *runner = srunner_create(s);
