@@ -117,8 +117,11 @@ static struct by_state make_behind(struct telling *t, struct alphas *x, const st
 static const struct by_state *behind_point(struct telling *t, struct alphas *x, size_t point)
 {
     if (!x->at[point].at) {
-        struct by_state made = make_behind(t, x, &t->b->points.at[point]);
+        const struct point *p = &t->b->points.at[point];
+        struct by_state made = make_behind(t, x, p);
         x->at[point] = made;
+        if (p->kind != POINT_END)
+            branching_tell(&t->r, *p->path ? p->path : "start", x->of, -1, &made);
     }
     return &x->at[point];
 }
@@ -129,6 +132,20 @@ static struct alphas alphas_of(struct telling *t, const struct measure *m)
 }
 
 /* --- what is believed --- */
+
+/* What is believed on the way, as branching_tell. */
+static void tell_belief(struct telling *t, const char *path, double at, const node_id *belief)
+{
+    for (size_t k = 0; k < hidden_in(t); k++) {
+        const char *what =
+            arena_printf(t->f->arena, "%s at %.6g a", t->b->worlds.hidden.names[k], at);
+        const char *name = arena_printf(t->f->arena, "%s.belief %s", path, what);
+        if (belief[k] == NODE_NONE || strmap_has(t->r.told, name))
+            continue;
+        strmap_set(t->f->arena, t->r.told, name, NULL);
+        compiled_add(section(t), PROPERTY_BELIEF, path, what, belief[k], NULL, NULL);
+    }
+}
 
 /* Beliefs behind the moves of a branch. */
 static node_id *move_on(struct telling *t, const struct way *b, node_id *belief)
@@ -153,6 +170,7 @@ static node_id *move_on(struct telling *t, const struct way *b, node_id *belief)
                     terms[count++] = belief[h];
             after[k] = count ? sum(t, count, terms) : NODE_NONE;
         }
+        tell_belief(t, b->path, m->to, after);
         belief = after;
     }
     return belief;
@@ -479,7 +497,8 @@ ohmen_status branching_figures(struct branching *b, struct figures *f, ohmen_err
     struct weighing *w = b->weighing;
     struct telling t = {.f = f, .b = b};
     t.damage = (struct measure){PROPERTY_RISK, NULL, dim_money_rate, dim_money};
-    t.r = (struct rolling){.b = b, .worth = {.f = f, .w = w}};
+    struct strmap told = {0};
+    t.r = (struct rolling){.b = b, .worth = {.f = f, .w = w}, .told = &told};
     compiled_begin(f, w->alternatives.at[0].variant, model_find(f->base, w->id), w->id,
                    section(&t));
     money_begin(&t.r.worth.money, f, section(&t), w->horizon);

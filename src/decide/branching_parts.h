@@ -40,7 +40,14 @@ struct rolling {
     struct branching *b;
     struct strmap measured; /* measures of worlds that have a node already */
     struct strmap stated;   /* quantities of the document that have a node already */
+    struct strmap *told;    /* figures on the way that are there already; NULL: none are made */
 };
+
+/* Gives what is to come on the way a figure for each hidden state, "to-come.PATH.damage, aged at
+ * 3 a": derivations name it there instead of unfolding what follows, which doubles with each year.
+ * at: years from the start; below 0 at a point. */
+void branching_tell(struct rolling *r, const char *path, const struct measure *m, double at,
+                    const struct by_state *x);
 
 /* A quantity of the decision: one node, wherever it is asked for. */
 node_id branching_stated(struct rolling *r, const struct quantity *q);

@@ -157,6 +157,35 @@ static void back_over(struct rolling *r, const struct move *m, const struct meas
     x->at = before;
 }
 
+static const char *measure_words(const struct rolling *r, const struct measure *m)
+{
+    if (!m)
+        return "cost";
+    switch (m->property) {
+    case PROPERTY_BORNE: return arena_printf(r->worth.f->arena, "damage to %s", m->of);
+    case PROPERTY_FATALITIES: return arena_printf(r->worth.f->arena, "deaths of %s", m->of);
+    case PROPERTY_CUSTOMER_TIME: return "customer time";
+    default: return "damage";
+    }
+}
+
+void branching_tell(struct rolling *r, const char *path, const struct measure *m, double at,
+                    const struct by_state *x)
+{
+    const struct hidden *h = &r->b->worlds.hidden;
+    struct arena *a = r->worth.f->arena;
+    for (size_t k = 0; r->told && h->n > 1 && k < h->n; k++) {
+        const char *what = arena_printf(a, "%s, %s", measure_words(r, m), h->names[k]);
+        if (at >= 0)
+            what = arena_printf(a, "%s at %.6g a", what, at);
+        const char *name = arena_printf(a, "%s.%s", path, what);
+        if (x->at[k] == NODE_NONE || strmap_has(r->told, name))
+            continue;
+        strmap_set(a, r->told, name, NULL);
+        compiled_add(&r->worth.b, PROPERTY_TO_COME, path, what, x->at[k], NULL, NULL);
+    }
+}
+
 struct by_state branching_back(struct rolling *r, const struct way *b, const struct measure *m,
                                const struct by_state *end)
 {
@@ -164,8 +193,12 @@ struct by_state branching_back(struct rolling *r, const struct way *b, const str
     struct by_state x = {NEW_ARRAY(r->worth.f->arena, n, node_id)};
     for (size_t k = 0; k < n; k++)
         x.at[k] = end ? end->at[k] : NODE_NONE;
-    for (size_t i = b->moves.n; i > 0; i--)
-        back_over(r, &b->moves.at[i - 1], m, &x);
+    for (size_t i = b->moves.n; i > 0; i--) {
+        const struct move *over = &b->moves.at[i - 1];
+        back_over(r, over, m, &x);
+        if (over->kind == MOVE_TIME && over->world->flows.n)
+            branching_tell(r, b->path, m, over->at, &x);
+    }
     return x;
 }
 

@@ -57,7 +57,8 @@
       "mean time in which repairs keep a scheme from working, once they do")                       \
     X(FREQUENCY, "frequency", "how often a hazard, or one of its outcomes, occurs")                \
     X(END, "end", "probability of one end of the event tree, given the hazard")                    \
-    X(PROBABILITY, "probability", "probability of an outcome, given the hazard")                   \
+    X(PROBABILITY, "probability",                                                                  \
+      "probability of an outcome, given the hazard; of a branch of chance, or a reading")          \
     X(SHARE, "share",                                                                              \
       "share of a branch, of the faults that a function sees, or of a kind of fault")              \
     X(CLEARANCE, "clearance-time", "clearance time of a row")                                      \
@@ -119,7 +120,7 @@
       "limit of that")                                                                             \
     X(FATALITY_WORTH, "per-fatality", "what society would spend to avoid one expected death")      \
     X(TO_COME, "to-come",                                                                          \
-      "present value of cost and damage to come from a point of a tree on, the best branches taken") \
+      "present value of what is to come from a point of a tree on, the best branches taken")       \
     X(BELIEF, "belief", "probability of a state as it is believed at a point of a tree")           \
     X(REACH, "reach", "probability of coming to a point of a tree, the best branches taken")       \
     X(BECOMES, "becomes", "how often a state becomes another one")                                 \

@@ -103,6 +103,7 @@ void part_branching_recommendation(struct job *j, const struct weighing *w)
     note(&m, "how-sure", sure_sentence(j, w));
     costs(&m);
     avoids(&m);
+    note(&m, "ends", endings_sentence(j, w));
     note(&m, "to-others", perspectives_sentence(j, w));
     note(&m, "people-further", further_sentence(j, w));
     if (w->alternatives.n > 1)

@@ -280,13 +280,20 @@ static void say_condition(const struct telling *t, struct text *out, const struc
     }
 }
 
+/* At the first choice, by what is seen there. */
 static const char *now_sentence(const struct telling *t)
 {
-    const struct point *p = &t->b->points.at[0];
-    if (!p->is_stage)
-        return "";
-    return arena_printf(t->j->arena, "Now: %s. The table of when to act has what follows.",
+    struct text out;
+    text_init(&out, t->j->arena);
+    for (size_t i = 0; i < t->all.n; i++) {
+        const struct point *p = point_in(t, &t->all.at[i], 0);
+        if (p)
+            text_printf(&out, "%s%s: %s", out.n ? "; when " : "Now, when ", t->all.at[i].name,
                         best_label(p));
+    }
+    return out.n ? arena_printf(t->j->arena, "%s. The table of when to act has what follows.",
+                                text_str(&out))
+                 : "";
 }
 
 const char *policy_sentence(struct job *j, const struct weighing *w)

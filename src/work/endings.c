@@ -86,6 +86,8 @@ static void add_ends(struct job *j, const char *id, const struct compiled *now,
 static bool matters(const struct weighing *w, size_t hazard, const struct alternative *best)
 {
     const struct weighed_hazard *h = &w->hazards.at[hazard];
+    if (w->branching) /* what may be done lies on many paths: as it is now */
+        return h->in_focus || w->decision->focus.n == 0;
     bool changed = best->hazards[hazard] != h->now;
     return changed || h->in_focus || (w->decision->focus.n == 0 && best->n == 0);
 }
@@ -95,7 +97,14 @@ static void find_ends(struct job *j, const struct weighing *w, struct bad_ends *
     const struct alternative *best = &w->alternatives.at[w->order[0]];
     for (size_t i = 0; i < w->hazards.n; i++)
         if (matters(w, i, best))
-            add_ends(j, w->hazards.at[i].id, w->hazards.at[i].now, best->hazards[i], out);
+            add_ends(j, w->hazards.at[i].id, w->hazards.at[i].now,
+                     w->branching ? w->hazards.at[i].now : best->hazards[i], out);
+}
+
+/* Is there one frequency with the best alternative, beside that of today? */
+static bool has_then(const struct weighing *w)
+{
+    return !w->branching && w->alternatives.at[w->order[0]].n > 0;
 }
 
 static void ending_row(struct job *j, struct block *b, const struct bad_end *x, bool both)
@@ -119,17 +128,18 @@ void part_endings(struct job *j, const struct weighing *w)
     block_column(r, b, "hazard", "Hazard", "", STYLE_PLAIN);
     block_column(r, b, "outcome", "Outcome", "", STYLE_PLAIN);
     block_column(r, b, "today", "Today", "1/a", STYLE_FREQUENCY);
-    if (best->n)
+    if (has_then(w))
         block_column(r, b, "recommended", arena_printf(j->arena, "With %s", best->name), "1/a",
                      STYLE_FREQUENCY);
     block_column(r, b, "damage", "Damage", j->model->settings->currency, STYLE_MONEY)->keep = 1;
     for (size_t i = 0; i < all.n; i++)
-        ending_row(j, b, &all.at[i], best->n > 0);
+        ending_row(j, b, &all.at[i], has_then(w));
     report_note(
         r, "endings-shown",
-        "Of the hazards in focus and those that change: outcomes that hold at least %.0f %% "
-        "of the risk of their hazard%s.",
-        100 * SHARE_OF_RISK, best->n ? ", now or with what is recommended" : "");
+        "Of the hazards in focus%s: outcomes that hold at least %.0f %% of the risk of their "
+        "hazard%s.",
+        w->branching ? ", as they are now" : " and those that change", 100 * SHARE_OF_RISK,
+        has_then(w) ? ", now or with what is recommended" : "");
 }
 
 /* "1 in 64 a", "1.54 per a", or that it never happens. */
@@ -183,7 +193,6 @@ static void tell_end(struct job *j, struct text *t, const struct bad_end *x, boo
 const char *endings_sentence(struct job *j, const struct weighing *w)
 {
     enum { MOST = 3 };
-    const struct alternative *best = &w->alternatives.at[w->order[0]];
     struct bad_ends all = {0};
     struct text t;
     text_init(&t, j->arena);
@@ -193,7 +202,7 @@ const char *endings_sentence(struct job *j, const struct weighing *w)
     for (size_t i = 0; i < MOST && i < n; i++) {
         size_t k = worst_end(j, &all, told);
         told[k] = true;
-        tell_end(j, &t, &all.at[k], best->n > 0);
+        tell_end(j, &t, &all.at[k], has_then(w));
     }
     return n ? arena_printf(j->arena, "How often it ends badly: %s.", text_str(&t)) : "";
 }

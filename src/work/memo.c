@@ -464,8 +464,7 @@ static void write_memo(struct job *j, struct weighing *w, ohmen_error *e)
     report_heading(j->report, 2, "How bad it may get");
     part_loss(j, w);
     report_heading(j->report, 2, "What happens");
-    if (!w->branching)
-        part_endings(j, w);
+    part_endings(j, w);
     part_weighed_hazards(j, w);
     part_weighing_grid(j, w);
     part_grounds(&m);

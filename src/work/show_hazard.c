@@ -1,6 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The page of a hazard: what is stated of it, its event tree with numbers, what its risk hinges
  * on, where it is weak, and its risk over the years. */
+#include <string.h>
+
 #include "work/show.h"
 
 /* Minimal cut sets that the page has room for. */
@@ -253,13 +255,38 @@ static void hazard_pairs(struct job *j, const struct compiled *c)
 }
 
 /* The operating states that the hazard is a mean over. */
+/* What the states are that reach the hazard: such as vary with time, such as are unknown, or both;
+ * by the names of a combination, "T2-OUT=normal+T2-WINDING=aged". */
+static const struct state_words {
+    const char *title, *share, *noun, *why;
+} state_words[] = {
+    {"Operating states", "Share of time", "operating states", "holds most of the time"},
+    {"Unknown states", "Probability", "unknown states", "is the most probable"},
+    {"States, operating and unknown", "Probability", "operating and the unknown states",
+     "is the most probable"},
+};
+
+static const struct state_words *words_of_states(struct job *j, const struct hazard_exports *x)
+{
+    bool varies = false, unknown = false;
+    for (const char *at = x->states[0].name; at; at = strchr(at, '+')) {
+        at += *at == '+';
+        const char *id = arena_strn(j->arena, at, strcspn(at, "="));
+        const struct state *s = model_get(j->model, KIND_STATE, id);
+        unknown = unknown || (s && s->is.n);
+        varies = varies || (s && !s->is.n);
+    }
+    return &state_words[varies && unknown ? 2 : unknown];
+}
+
 static void states_table(struct job *j, const struct compiled *c)
 {
     struct report *r = j->report;
     const struct hazard_exports *x = c->exports;
-    struct block *b = report_table(r, "states", "Operating states");
+    const struct state_words *words = words_of_states(j, x);
+    struct block *b = report_table(r, "states", words->title);
     block_column(r, b, "state", "State", "", STYLE_PLAIN);
-    block_column(r, b, "share", "Share of time", "", STYLE_PROBABILITY);
+    block_column(r, b, "share", words->share, "", STYLE_PROBABILITY);
     block_column(r, b, "frequency", "Occurs", "1/a", STYLE_FREQUENCY)->keep = 1;
     block_column(r, b, "damaging", "Does damage", "1/a", STYLE_FREQUENCY)->keep = 2;
     block_column(r, b, "risk", "Risk", unit_per_year(j), STYLE_MONEY);
@@ -306,10 +333,11 @@ static void part_states(struct job *j, const struct compiled *c)
     if (x->n_states == 0)
         return;
     states_table(j, c);
-    report_note(j->report, "states",
-                "The figures are means over the operating states; the response, the event tree and "
-                "the minimal cut sets are those of %s, which holds most of the time.",
-                shown_state(x)->name);
+    report_note(
+        j->report, "states",
+        "The figures are means over the %s; the response, the event tree and the minimal cut "
+        "sets are those of %s, which %s.",
+        words_of_states(j, x)->noun, shown_state(x)->name, words_of_states(j, x)->why);
 }
 
 /* --- weak points --- */
