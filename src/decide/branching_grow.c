@@ -310,17 +310,25 @@ static const struct reading_test *test_of(struct growing *g, const char *inspect
     return NULL;
 }
 
+/* What is paid at the end of the horizon, or would be behind it, is no cost. */
+static void pay(struct growing *g, struct way *b, const struct standing *s,
+                const struct quantity *paid, const char *what)
+{
+    if (s->time >= g->horizon - SAME_TIME)
+        return;
+    struct move *m = add_move(g, b, MOVE_PAY, s->time);
+    m->paid = paid;
+    m->what = what;
+}
+
 static void pay_for_test(struct growing *g, struct way *b, const struct standing *s,
                          const char *inspect)
 {
     size_t state;
     const char *name;
     const struct reading_test *t = test_of(g, inspect, &state, &name);
-    if (!t || !t->costs)
-        return;
-    struct move *m = add_move(g, b, MOVE_PAY, s->time);
-    m->paid = t->costs;
-    m->what = inspect;
+    if (t && t->costs)
+        pay(g, b, s, t->costs, inspect);
 }
 
 static ohmen_status grow_point(struct growing *g, enum point_kind kind, const struct step *step,
@@ -358,9 +366,7 @@ static ohmen_status take_step(struct growing *g, struct way *b, struct standing 
                               const struct step *step, struct text *words, ohmen_error *e)
 {
     if (step->pay) {
-        struct move *m = add_move(g, b, MOVE_PAY, s->time);
-        m->paid = step->pay;
-        m->what = "pay";
+        pay(g, b, s, step->pay, "pay");
         say(words, "pay %s", quantity_words(g, step->pay));
         return OHMEN_OK;
     }

@@ -191,14 +191,16 @@ static double value_of(const struct figures *f, node_id n)
     return n == NODE_NONE ? 0 : means_value(f->means, n);
 }
 
-static double expected(const struct figures *f, const struct way *b, size_t n,
-                       const struct amounts *x)
+static void expect(const struct figures *f, struct way *b, size_t n, const struct amounts *x)
 {
-    double sum = 0;
-    for (size_t k = 0; k < n; k++)
-        if (b->belief[k] > 0)
-            sum += b->belief[k] * (value_of(f, x->cost.at[k]) + value_of(f, x->damage.at[k]));
-    return sum;
+    b->amount = b->cost = 0;
+    for (size_t k = 0; k < n; k++) {
+        if (!(b->belief[k] > 0))
+            continue;
+        double cost = value_of(f, x->cost.at[k]);
+        b->amount += b->belief[k] * (cost + value_of(f, x->damage.at[k]));
+        b->cost += b->belief[k] * cost;
+    }
 }
 
 static void compile_amounts(struct rolling *r, struct way *b, struct amounts *x)
@@ -234,12 +236,10 @@ static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
     ohmen_status status = figures_evaluate(f, e);
     at = 0;
     for (size_t i = 0; status == OHMEN_OK && i < b->points.n; i++)
-        for (size_t k = 0; k < b->points.at[i].n; k++) {
-            struct way *x = &b->points.at[i].branches[k];
-            x->amount = expected(f, x, b->worlds.hidden.n, &all[at++]);
-        }
+        for (size_t k = 0; k < b->points.at[i].n; k++)
+            expect(f, &b->points.at[i].branches[k], b->worlds.hidden.n, &all[at++]);
     if (status == OHMEN_OK)
-        b->nothing->amount = expected(f, b->nothing, b->worlds.hidden.n, &all[at]);
+        expect(f, b->nothing, b->worlds.hidden.n, &all[at]);
     return status;
 }
 
@@ -306,6 +306,24 @@ static void read_results(struct branching *b, const double *value, const uint32_
     }
 }
 
+/* What is paid from the beginning of each branch on: points come behind all that they lead to. */
+static void add_up_costs(struct branching *b, struct arena *a)
+{
+    double *paid = NEW_ARRAY(a, b->points.n, double);
+    for (size_t i = 0; i < b->points.n; i++) {
+        struct point *p = &b->points.at[b->order[i]];
+        double *sum = &paid[b->order[i]];
+        for (size_t k = 0; k < p->n; k++) {
+            struct way *x = &p->branches[k];
+            x->whole_cost = x->cost + paid[x->to];
+            *sum += p->kind != POINT_CHOOSE ? x->probability * x->whole_cost
+                    : p->best == k          ? x->whole_cost
+                                            : 0;
+        }
+        p->whole_cost = *sum;
+    }
+}
+
 ohmen_status branching_roll_back(struct branching *b, struct figures *f, ohmen_error *e)
 {
     struct rolling r = {.b = b};
@@ -321,6 +339,7 @@ ohmen_status branching_roll_back(struct branching *b, struct figures *f, ohmen_e
     rollback_policy(b->laid_out, isa_best(), value, chosen);
     rollback_reach(b->laid_out, chosen, reach);
     read_results(b, value, chosen, reach);
+    add_up_costs(b, f->arena);
     b->nothing->value = b->nothing->amount;
     return OHMEN_OK;
 }
