@@ -61,25 +61,33 @@ static void check_alternatives(struct loaded *l, struct weighing *g, struct tree
         expect(w, total_of(l, g, "policy"), tree_world_value(w, SIZE_MAX), "policy", text);
 }
 
-static void try_world(uint64_t seed, enum tree_sort sort)
+/* False where it has too many policies. */
+static bool try_world(uint64_t seed, enum tree_sort sort)
 {
+    bool too_many = false;
     struct arena *a = arena_new(NULL);
     struct random r = random_seed(seed);
-    struct tree_world w = {.a = a, .r = &r};
+    struct tree_world w = {.a = a, .r = &r, .too_many = &too_many};
     struct loaded l;
     const char *text = tree_world_draw(&w, sort);
     struct weighing *g =
         weigh(&l, a, arena_printf(a, "# %llu\n%s", (unsigned long long)seed, text));
     loaded_evaluate(&l);
-    expect(&w, g->branching->points.at[0].value, tree_world_value(&w, SIZE_MAX), "root", text);
-    check_alternatives(&l, g, &w, text);
+    double best = tree_world_value(&w, SIZE_MAX);
+    if (!too_many) {
+        expect(&w, g->branching->points.at[0].value, best, "root", text);
+        check_alternatives(&l, g, &w, text);
+    }
     arena_free(a);
+    return !too_many;
 }
 
 START_TEST(worth_as_the_best_of_all_policies)
 {
+    size_t tried = 0;
     for (uint64_t seed = 1; seed <= WORLDS; seed++)
-        try_world(seed, (enum tree_sort)_i);
+        tried += try_world(seed, (enum tree_sort)_i);
+    ck_assert_uint_ge(tried, WORLDS * 4 / 5);
 }
 END_TEST
 

@@ -8,7 +8,7 @@
 #include <math.h>
 #include <string.h>
 
-enum { DONE_MOST = 12, POINTS_OF_RULE = 12, POLICIES_MOST = 60000 };
+enum { DONE_MOST = 12, POINTS_OF_RULE = 12, POLICIES_MOST = 400 };
 
 static const double SAME = 1e-9; /* a */
 
@@ -326,7 +326,10 @@ static void add_row(const struct tree_world *w, struct set *s, const struct row 
             s->at[n++] = s->at[i];
     s->n = n;
     *array_push(w->a, s) = *x;
-    ck_assert_uint_lt(s->n, POLICIES_MOST);
+    if (s->n >= POLICIES_MOST) {
+        *w->too_many = true;
+        s->n = 1;
+    }
 }
 
 static struct set only(const struct tree_world *w)
@@ -441,7 +444,10 @@ static bool possible(const struct tree_world *w, const struct tree_steps *steps,
         for (size_t k = 0; steps->at[i].kind == TREE_APPLY && k < s->n; k++) {
             const struct tree_option *o = &w->options[steps->at[i].which];
             bool sets = o->sets[0] >= 0 || (w->n_states > 1 && o->sets[1] >= 0);
-            if (s->applied[k].option == steps->at[i].which && (!sets || o->renewed))
+            size_t before = s->applied[k].option, now = steps->at[i].which;
+            if (before == now && (!sets || o->renewed))
+                return false;
+            if (w->exclude && before + now == 1)
                 return false;
         }
     return true;
@@ -466,8 +472,15 @@ static struct set as_seen(const struct tree_world *w, const struct set *all)
             weight[j] = alike(w, k, j);
             first = first && !(j < k && weight[j] > 0);
         }
+        struct set here = {0};
+        for (size_t i = 0; first && i < all->n; i++) {
+            struct row x = all->at[i];
+            for (size_t j = 0; j < hidden(w); j++)
+                x.x[j] *= weight[j];
+            add_row(w, &here, &x);
+        }
         if (first)
-            out = all_ways(w, &out, all, weight);
+            out = all_ways(w, &out, &here, weight);
     }
     return out;
 }

@@ -24,7 +24,7 @@ enum { TREE_BRANCHES = 3, READINGS = 2 };
 
 struct tree_option {
     double invest, on, service, running, residual, life, early; /* 0: none, but for dates: NAN */
-    bool renewed, plain; /* plain: no dates, it only changes and sets */
+    bool renewed, bare; /* bare: it changes nothing but states */
     double factor[TREE_HAZARDS], early_factor;
     int sets[TREE_STATES]; /* -1: not */
 };
@@ -61,7 +61,9 @@ struct tree_steps ARRAY_BODY(struct tree_step);
 struct tree_world {
     struct arena *a;
     struct random *r;
+    bool *too_many; /* set where there are too many policies to be listed: no value */
     bool evolves, repeats, fractions, sees[TREE_STATES];
+    bool exclude; /* the first two options each other */
     double horizon, discount, every;
     double frequency[TREE_HAZARDS], damage[TREE_HAZARDS];
     size_t n_options, n_states;

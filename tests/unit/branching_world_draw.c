@@ -34,17 +34,17 @@ static double draw_time(struct tree_world *w, int most)
 
 static void draw_option(struct tree_world *w, struct tree_option *o)
 {
-    *o = (struct tree_option){.on = NAN, .service = NAN, .plain = w->repeats && one_in(w, 2)};
+    *o = (struct tree_option){.on = NAN, .service = NAN, .bare = w->repeats && one_in(w, 2)};
     o->invest = (double)random_range(w->r, 1, 400);
     for (size_t h = 0; h < TREE_HAZARDS; h++)
-        o->factor[h] = parts(w, 10, 120, 100);
+        o->factor[h] = o->bare ? 1 : parts(w, 10, 120, 100);
     for (size_t i = 0; i < TREE_STATES; i++)
         o->sets[i] = i < w->n_states && one_in(w, 3) ? (int)random_index(w->r, w->states[i].n) : -1;
-    if (one_in(w, 3))
+    if (!o->bare && one_in(w, 3))
         o->running = (double)random_range(w->r, 1, 20);
-    if (one_in(w, 3))
+    if (!o->bare && one_in(w, 3))
         o->residual = (double)random_range(w->r, 1, 50);
-    if (o->plain)
+    if (o->bare)
         return;
     if (one_in(w, 3))
         o->on = (double)random_range(w->r, 0, 2);
@@ -119,7 +119,8 @@ static void draw_point(struct tree_world *w, struct tree_steps *s, struct left l
 static bool may_apply(const struct tree_world *w, size_t option, unsigned depth)
 {
     const struct tree_option *o = &w->options[option];
-    return !w->repeats || depth > 0 || ((o->sets[0] >= 0 || o->sets[1] >= 0) && !o->renewed);
+    return !w->repeats || depth > 0 ||
+           (!w->exclude && (o->sets[0] >= 0 || o->sets[1] >= 0) && !o->renewed);
 }
 
 static struct tree_steps *draw_steps(struct tree_world *w, struct left left)
@@ -153,8 +154,12 @@ static void draw_choices(struct tree_world *w)
     struct left left = {w->repeats ? w->every : w->horizon - 1, (1u << w->n_options) - 1,
                         w->repeats ? 1 : DEPTH};
     w->n = (size_t)random_range(w->r, 2, TREE_BRANCHES);
-    for (size_t k = 0; k < w->n; k++)
-        w->choose[k] = draw_steps(w, left);
+    for (size_t k = 0; k < w->n; k++) {
+        struct left here = left;
+        if (w->exclude)
+            here.options &= ~(1u << random_index(w->r, 2));
+        w->choose[k] = draw_steps(w, here);
+    }
     if (w->repeats) /* one that is always possible */
         *w->choose[0] = (struct tree_steps){0};
 }
@@ -188,10 +193,12 @@ static void put_option(struct tree_world *w, struct text *t, size_t k)
     if (o->early > 0)
         text_printf(t, "    early: {for: %g a, change: {hazards: {H-0: {frequency: %g * was}}}}\n",
                     o->early, o->early_factor);
-    text_add(t, "    change: {hazards: {");
-    for (size_t h = 0; h < TREE_HAZARDS; h++)
+    if (w->exclude && k == 0)
+        text_printf(t, "    excludes: [%s]\n", option_names[1]);
+    text_add(t, o->bare ? "    change: {}\n" : "    change: {hazards: {");
+    for (size_t h = 0; h < TREE_HAZARDS && !o->bare; h++)
         text_printf(t, "%sH-%zu: {frequency: %g * was}", h ? ", " : "", h, o->factor[h]);
-    text_add(t, "}}\n");
+    text_add(t, o->bare ? "" : "}}\n");
 }
 
 static void put_becomes(struct text *t, const struct tree_state *s)
@@ -329,6 +336,7 @@ const char *tree_world_draw(struct tree_world *w, enum tree_sort sort)
     w->every = w->horizon > 2 && one_in(w, 4) ? 2 : 1;
     w->n_states = (size_t)random_range(w->r, 1, TREE_STATES);
     w->n_options = (size_t)random_range(w->r, 1, TREE_OPTIONS - 1);
+    w->exclude = w->repeats && w->n_options > 1 && one_in(w, 2);
     for (size_t i = 0; i < TREE_STATES; i++)
         w->sees[i] = w->repeats && i < w->n_states && one_in(w, 2);
     for (size_t h = 0; h < TREE_HAZARDS; h++) {
