@@ -3,6 +3,7 @@
  * the root, of each alternative and of doing nothing. */
 #include <check.h>
 #include <math.h>
+#include <stdio.h>
 #include <stdlib.h>
 
 #include "branching_world.h"
@@ -27,6 +28,11 @@ static void expect(const struct tree_world *w, double got, double want, const ch
 {
     ck_assert_msg(fabs(got - want) <= PART * (fabs(want) + size_of(w)), "%s: %.17g, not %.17g\n%s",
                   what, got, want, text);
+}
+
+static void expect_sum(double got, double want)
+{
+    ck_assert_msg(fabs(got - want) <= 1e-12 * fabs(want), "%.17g, not %.17g", got, want);
 }
 
 static struct weighing *weigh(struct loaded *l, struct arena *a, const char *text)
@@ -91,12 +97,100 @@ START_TEST(worth_as_the_best_of_all_policies)
 }
 END_TEST
 
-int main(void)
+/* --- limits and sentences --- */
+
+#define REGISTER                                                                                   \
+    "register: {title: T, currency: EUR, prices: 2026, start: 2026-01-01, horizon: 4 a, "          \
+    "discount: 5 % per a}\n"                                                                       \
+    "hazards: {H: {name: F, frequency: 0.5 per a, response: {only: {outcome: hit}},\n"             \
+    "  outcomes: {hit: {name: Hit, damage: {x: {category: c, is: 900 EUR}}}}}}\n"                  \
+    "states: {S: {name: S, is: {x: 0.3, y: 0.7}, when: {y: {hazards: {H: {frequency: 2 * "         \
+    "was}}}},\n"                                                                                   \
+    "  tests: {T: {reads: [fair, bad], given: {x: [0.6, 0.4], y: [0.3, 0.7]}}}}}\n"
+#define OPTIONS(more)                                                                              \
+    "options:\n"                                                                                   \
+    "  O-A: {name: A, invest: {is: 10 EUR}, " more                                                 \
+    "change: {hazards: {H: {frequency: 0.5 * was}}}}\n"                                            \
+    "  O-B: {name: B, invest: {is: 10 EUR}, change: {hazards: {H: {frequency: 0.4 * was}}}}\n"
+#define TREE(choose) "decisions: {D: {question: Q, " choose "}}\n"
+/* A reading each year: behind three of them there are four beliefs, by how many were fair. */
+#define READ_YEARLY(most)                                                                          \
+    TREE("every: 1 a, beliefs: " most                                                              \
+         ", choose: {look: [{inspect: S.T, reads: {fair: [], bad: []}}]}")
+
+static const struct told {
+    const char *text, *error; /* NULL: there is none */
+} told[] = {
+    {REGISTER OPTIONS("excludes: [O-B], ")
+         TREE("choose: {both: [{apply: O-A}, {wait: 1 a}, {apply: O-B}]}"),
+     "\"D\", at \"both\": the options \"O-A\" and \"O-B\" exclude each other, and both are "
+     "applied"},
+    {REGISTER OPTIONS("requires: [O-B], ") TREE("choose: {alone: [{apply: O-A}]}"),
+     "\"D\", at \"alone\": the option \"O-A\" requires \"O-B\", which is not applied before it"},
+    {REGISTER OPTIONS("requires: [O-B], ") TREE("choose: {both: [{apply: O-B}, {apply: O-A}]}"),
+     NULL},
+    {REGISTER READ_YEARLY("4"), NULL},
+    {REGISTER READ_YEARLY("3"),
+     "\"D\", at the choice of 2029: there are more than 3 beliefs, which do not merge; allow more "
+     "with \"beliefs\", or choose or inspect less often"},
+    {REGISTER TREE("every: 0.004 a, choose: {wait: []}"), NULL}, /* STAGES_MOST */
+};
+
+START_TEST(tells_what_is_wrong)
 {
+    const struct told *x = &told[_i];
+    struct arena *a = arena_new(NULL);
+    struct loaded l;
+    struct weighing *w = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    loaded_text(&l, a, x->text, NULL);
+    ohmen_status status = weigh_compile(l.figures, "D", &w, &e);
+    ck_assert_msg((status == OHMEN_OK) == !x->error, "%s", e.text);
+    if (x->error) {
+        ck_assert_int_eq(status, OHMEN_COMPUTE);
+        ck_assert_str_eq(e.text, x->error);
+    }
+    arena_free(a);
+}
+END_TEST
+
+/* A branch that costs nothing has no ratio, and nothing is paid at the end of the horizon. */
+START_TEST(costs_nothing)
+{
+    struct arena *a = arena_new(NULL);
+    struct loaded l;
+    const struct weighing *w = weigh(
+        &l, a,
+        REGISTER TREE("every: 3 a, choose: {late: [{wait: 1 a}, {pay: -100 EUR}], wait: []}"));
+    loaded_evaluate(&l);
+    const double late = 100 / 1.05; /* once: that of the second choice would be paid at the end */
+    expect_sum(figure_value(l.figures, w->alternatives.at[1].present_cost), -late);
+    ck_assert_uint_eq(w->alternatives.at[1].ratio, FIGURE_NONE);
+    arena_free(a);
+}
+END_TEST
+
+/* "branching_test SORT SEED" prints the document of a random world. */
+static int print_world(const char *sort, const char *seed)
+{
+    struct arena *a = arena_new(NULL);
+    struct random r = random_seed(strtoull(seed, NULL, 10));
+    struct tree_world w = {.a = a, .r = &r};
+    printf("%s", tree_world_draw(&w, (enum tree_sort)atoi(sort)));
+    arena_free(a);
+    return 0;
+}
+
+int main(int argc, char **argv)
+{
+    if (argc == 3)
+        return print_world(argv[1], argv[2]);
     Suite *s = suite_create("branching");
     TCase *t = tcase_create("random");
     tcase_set_timeout(t, 300);
     tcase_add_loop_test(t, worth_as_the_best_of_all_policies, 0, TREE_SORTS);
+    tcase_add_loop_test(t, tells_what_is_wrong, 0, sizeof told / sizeof *told);
+    tcase_add_test(t, costs_nothing);
     suite_add_tcase(s, t);
     SRunner *runner = srunner_create(s);
     srunner_run_all(runner, CK_NORMAL);
