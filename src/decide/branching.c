@@ -245,6 +245,15 @@ static int by_id(const void *p, const void *q)
                         ((const struct weighed_hazard *)q)->id);
 }
 
+/* No one register is that of a branch: what is in service depends on time and chance. */
+static const struct compiled **hazards_today(struct figures *f, const struct weighing *w)
+{
+    const struct compiled **all = NEW_ARRAY(f->arena, w->hazards.n, const struct compiled *);
+    for (size_t i = 0; i < w->hazards.n; i++)
+        all[i] = w->hazards.at[i].now;
+    return all;
+}
+
 static ohmen_status compile_today(struct figures *f, struct weighing *w, ohmen_error *e)
 {
     const struct variant *base = w->alternatives.at[0].variant;
@@ -254,6 +263,7 @@ static ohmen_status compile_today(struct figures *f, struct weighing *w, ohmen_e
     for (size_t i = 0; status == OHMEN_OK && i < w->hazards.n; i++)
         if (model_find(f->base, w->hazards.at[i].id))
             status = figures_compile(f, base, w->hazards.at[i].id, &w->hazards.at[i].now, e);
+    w->alternatives.at[0].hazards = hazards_today(f, w);
     return status;
 }
 
@@ -271,7 +281,7 @@ static void add_alternative(struct figures *f, struct weighing *w, const char *n
     alt->options = self;
     alt->variant = w->alternatives.at[0].variant;
     alt->of = NEW_ARRAY(f->arena, f->base->settings->perspectives.n, struct perspective_worth);
-    alt->hazards = NEW_ARRAY(f->arena, w->hazards.n, const struct compiled *);
+    alt->hazards = hazards_today(f, w);
     for (size_t k = 0; k < f->base->settings->perspectives.n; k++)
         alt->of[k] = (struct perspective_worth){FIGURE_NONE, FIGURE_NONE, FIGURE_NONE};
 }
