@@ -99,11 +99,13 @@ END_TEST
 
 /* --- limits and sentences --- */
 
-#define REGISTER                                                                                   \
+#define WITHOUT_STATES                                                                             \
     "register: {title: T, currency: EUR, prices: 2026, start: 2026-01-01, horizon: 4 a, "          \
     "discount: 5 % per a}\n"                                                                       \
     "hazards: {H: {name: F, frequency: 0.5 per a, response: {only: {outcome: hit}},\n"             \
-    "  outcomes: {hit: {name: Hit, damage: {x: {category: c, is: 900 EUR}}}}}}\n"                  \
+    "  outcomes: {hit: {name: Hit, damage: {x: {category: c, is: 900 EUR}}}}}}\n"
+#define REGISTER                                                                                   \
+    WITHOUT_STATES                                                                                 \
     "states: {S: {name: S, is: {x: 0.3, y: 0.7}, when: {y: {hazards: {H: {frequency: 2 * "         \
     "was}}}},\n"                                                                                   \
     "  tests: {T: {reads: [fair, bad], given: {x: [0.6, 0.4], y: [0.3, 0.7]}}}}}\n"
@@ -154,6 +156,42 @@ START_TEST(tells_what_is_wrong)
 }
 END_TEST
 
+/* Three states of four values are 64 hidden states with nine transitions each. */
+START_TEST(transitions_are_counted)
+{
+    struct arena *a = arena_new(NULL);
+    struct loaded l;
+    struct weighing *w = NULL;
+    ohmen_error e = OHMEN_ERROR_INIT;
+    struct text t;
+    text_init(&t, a);
+    text_add(&t, WITHOUT_STATES TREE("sees: [S-A], every: 1 a, choose: {wait: []}"));
+    text_add(&t, "states:\n");
+    for (char state = 'A'; state <= 'A' + _i; state++) {
+        text_printf(&t, "  S-%c:\n    name: N\n    is: {v0: rest, v1: 0.1, v2: 0.1, v3: 0.1}\n",
+                    state);
+        text_add(&t, "    when: {v1: {hazards: {H: {frequency: 2 * was}}}}\n    becomes:\n");
+        for (int from = 0; from < 4; from++) {
+            text_printf(&t, "      v%d: {", from);
+            for (int to = 0, n = 0; to < 4; to++)
+                if (to != from)
+                    text_printf(&t, "%sv%d: 0.1 per a", n++ ? ", " : "", to);
+            text_add(&t, "}\n");
+        }
+    }
+    loaded_text(&l, a, text_str(&t), NULL);
+    ohmen_status status = weigh_compile(l.figures, "D", &w, &e);
+    if (_i < 2) {
+        ck_assert_msg(status == OHMEN_OK, "%s", e.text);
+    } else {
+        ck_assert_int_eq(status, OHMEN_COMPUTE);
+        ck_assert_str_eq(e.text, "the unknown states that \"D\" follows have 576 transitions "
+                                 "together, at most 256 are possible");
+    }
+    arena_free(a);
+}
+END_TEST
+
 /* A branch that costs nothing has no ratio, and nothing is paid at the end of the horizon. */
 START_TEST(costs_nothing)
 {
@@ -190,6 +228,7 @@ int main(int argc, char **argv)
     tcase_set_timeout(t, 300);
     tcase_add_loop_test(t, worth_as_the_best_of_all_policies, 0, TREE_SORTS);
     tcase_add_loop_test(t, tells_what_is_wrong, 0, sizeof told / sizeof *told);
+    tcase_add_loop_test(t, transitions_are_counted, 0, 3);
     tcase_add_test(t, costs_nothing);
     suite_add_tcase(s, t);
     SRunner *runner = srunner_create(s);
