@@ -18,6 +18,7 @@ struct found {
     ARRAY(const char *) options;
     ARRAY(const char *) inspected; /* "STATE.TEST" */
     ARRAY(const struct node *) changes;
+    ARRAY(const char *) failing; /* hazards whose outcomes renew a state that is followed */
 };
 
 static void add_name(struct found *x, const char *name)
@@ -169,34 +170,68 @@ static ohmen_status reached_by_state(const struct found *x, struct weighing *w,
     return status;
 }
 
-static void add_failing(const struct found *x, struct weighing *w, const struct state *s)
+static void add_failing(struct found *x, struct weighing *w, const struct state *s)
 {
-    for (size_t i = 0; i < s->failures.n; i++)
+    for (size_t i = 0; i < s->failures.n; i++) {
         add_hazard(x->f, w, s->failures.keys[i]);
+        *array_push(x->f->arena, &x->failing) = s->failures.keys[i];
+    }
+}
+
+/* Does some value of a state reach a hazard that renews a state which is followed? How often that
+ * is depends on what is the case, and is no mean over it. */
+static ohmen_status reaches_failing(const struct found *x, const struct weighing *w,
+                                    const struct object *o, bool *reaches, ohmen_error *e)
+{
+    const struct variant *base = w->alternatives.at[0].variant;
+    ohmen_status status = OHMEN_OK;
+    for (size_t k = 0; status == OHMEN_OK && k < state_values(o->data)->n; k++) {
+        const struct variant *v;
+        status = variant_in_state(x->f, base, o, k, &v, e);
+        for (size_t i = 0; status == OHMEN_OK && i < x->failing.n; i++)
+            *reaches = *reaches || variant_reaches(v, x->failing.at[i]);
+    }
+    return status;
+}
+
+/* Is the state to be followed: by its name; or since it changes with time and reaches what is
+ * weighed, or reaches what renews another one? */
+static ohmen_status find_state(struct found *x, struct weighing *w, const struct object *o,
+                               bool named, bool *chosen, ohmen_error *e)
+{
+    bool reaches = false, renews = false;
+    ohmen_status status = OHMEN_OK;
+    if (named || state_evolves(o->data))
+        status = reached_by_state(x, w, o, named, &reaches, e);
+    if (status == OHMEN_OK)
+        status = reaches_failing(x, w, o, &renews, e);
+    *chosen = named || reaches || renews;
+    if (status == OHMEN_OK && *chosen)
+        add_failing(x, w, o->data);
+    return status;
 }
 
 /* Unknown states that the tree follows: what it inspects, sees or renews, with the hazards that
- * they reach; and what changes with time and reaches those. */
-static ohmen_status find_states(const struct found *x, struct weighing *w, size_t *n,
+ * they reach; then what follows from these, until nothing is added. */
+static ohmen_status find_states(struct found *x, struct weighing *w, size_t *n,
                                 const struct object **out, ohmen_error *e)
 {
     const struct objects *states = &x->f->base->of[KIND_STATE];
     ohmen_status status = OHMEN_OK;
-    bool *chosen = NEW_ARRAY(x->f->arena, states->n, bool);
-    for (int round = 0; round < 2; round++)
+    bool *chosen = NEW_ARRAY(x->f->arena, states->n, bool), again = true;
+    for (int round = 0; again; round++) {
+        again = round == 0;
         for (size_t i = 0; status == OHMEN_OK && i < states->n; i++) {
             const struct object *o = states->at[i];
             const struct state *s = o->data;
             bool named = is_inspected(x, o->id) || is_seen(x->decision, o->id) || is_renewed(x, s);
-            bool reaches = false;
-            if (!s->is.n || chosen[i] || (round == 0 && !named) ||
-                (round == 1 && !state_evolves(s)))
+            if (!s->is.n || chosen[i] || (round == 0 && !named))
                 continue;
-            status = reached_by_state(x, w, o, named, &reaches, e);
-            chosen[i] = named || reaches;
-            if (chosen[i])
-                add_failing(x, w, s);
+            status = find_state(x, w, o, named, &chosen[i], e);
+            again = again || chosen[i];
         }
+        again = again && status == OHMEN_OK;
+    }
     *n = 0;
     for (size_t i = 0; i < states->n; i++)
         if (chosen[i])
@@ -210,6 +245,15 @@ static int by_id(const void *p, const void *q)
                         ((const struct weighed_hazard *)q)->id);
 }
 
+/* No one register is that of a branch: what is in service depends on time and chance. */
+static const struct compiled **hazards_today(struct figures *f, const struct weighing *w)
+{
+    const struct compiled **all = NEW_ARRAY(f->arena, w->hazards.n, const struct compiled *);
+    for (size_t i = 0; i < w->hazards.n; i++)
+        all[i] = w->hazards.at[i].now;
+    return all;
+}
+
 static ohmen_status compile_today(struct figures *f, struct weighing *w, ohmen_error *e)
 {
     const struct variant *base = w->alternatives.at[0].variant;
@@ -219,6 +263,7 @@ static ohmen_status compile_today(struct figures *f, struct weighing *w, ohmen_e
     for (size_t i = 0; status == OHMEN_OK && i < w->hazards.n; i++)
         if (model_find(f->base, w->hazards.at[i].id))
             status = figures_compile(f, base, w->hazards.at[i].id, &w->hazards.at[i].now, e);
+    w->alternatives.at[0].hazards = hazards_today(f, w);
     return status;
 }
 
@@ -236,7 +281,7 @@ static void add_alternative(struct figures *f, struct weighing *w, const char *n
     alt->options = self;
     alt->variant = w->alternatives.at[0].variant;
     alt->of = NEW_ARRAY(f->arena, f->base->settings->perspectives.n, struct perspective_worth);
-    alt->hazards = NEW_ARRAY(f->arena, w->hazards.n, const struct compiled *);
+    alt->hazards = hazards_today(f, w);
     for (size_t k = 0; k < f->base->settings->perspectives.n; k++)
         alt->of[k] = (struct perspective_worth){FIGURE_NONE, FIGURE_NONE, FIGURE_NONE};
 }

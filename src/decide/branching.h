@@ -65,10 +65,13 @@ struct way {
     double probability;           /* given that one stands at the point; of a choice 1 */
     const double *belief;         /* at its beginning */
     const node_id
-        *amounts;  /* cost and damage on it, by hidden state at its beginning; NODE_NONE: 0 */
-    double amount; /* cost and damage on it, as believed at its beginning */
-    double value;  /* cost and damage from its beginning on, the policy followed */
-    double reach;  /* probability of taking it, the policy followed */
+        *amounts; /* cost and damage on it, by hidden state at its beginning; NODE_NONE: 0 */
+    const node_id *costs; /* of that the cost */
+    double amount;        /* cost and damage on it, as believed at its beginning */
+    double cost;          /* of that the cost */
+    double whole_cost;    /* from its beginning on, the policy followed */
+    double value;         /* cost and damage from its beginning on, the policy followed */
+    double reach;         /* probability of taking it, the policy followed */
     figure_id probability_figure, value_figure, reach_figure; /* or FIGURE_NONE */
 };
 
@@ -86,6 +89,7 @@ struct point {
     const char *state; /* of a stage: what is seen or believed, and what is in service; else NULL */
     const char *test;  /* POINT_READ: "T2-WINDING.OIL" */
     double value, reach;
+    double whole_cost; /* from here on, the policy followed */
     figure_id value_figure, reach_figure;
 };
 

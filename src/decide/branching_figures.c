@@ -365,6 +365,22 @@ static node_id alternative_node(struct telling *t, struct alphas *x, size_t i)
     return over_hidden(t, &behind, x->of ? x->of->sum : dim_money);
 }
 
+/* What an alternative costs, as a number. */
+static double cost_number(const struct branching *b, const struct alternative *alt)
+{
+    const struct point *root = &b->points.at[0];
+    double sum = 0;
+    if (b->repeats && text_equal(alt->name, POLICY))
+        return root->whole_cost;
+    if (root->kind != POINT_SEE)
+        return labelled(root, alt->options[0])->whole_cost;
+    for (size_t k = 0; k < root->n; k++) {
+        const struct way *seen = &root->branches[k];
+        sum += seen->probability * labelled(&b->points.at[seen->to], alt->options[0])->whole_cost;
+    }
+    return sum;
+}
+
 static void add_money(struct telling *t, size_t i)
 {
     struct graph *g = graph_of(t);
@@ -385,7 +401,8 @@ static void add_money(struct telling *t, size_t i)
     node_id benefit = graph_op2(g, OP_SUBTRACT, now, damage);
     alt->benefit = add(t, PROPERTY_BENEFIT, name, NULL, benefit);
     alt->net = add(t, PROPERTY_NET, name, NULL, graph_op2(g, OP_SUBTRACT, benefit, cost));
-    alt->ratio = add(t, PROPERTY_RATIO, name, NULL, ratio_of_means(section(t), benefit, cost));
+    if (cost_number(t->b, alt) > 0)
+        alt->ratio = add(t, PROPERTY_RATIO, name, NULL, ratio_of_means(section(t), benefit, cost));
 }
 
 /* What is avoided of a measure, beside the money of the chosen perspective. */

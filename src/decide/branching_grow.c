@@ -83,12 +83,48 @@ static void path_change(struct growing *g, struct path *p, const char *name,
     p->changed.cap = copy.changed.cap;
 }
 
+static bool has_name(const struct names *all, const char *name)
+{
+    for (size_t i = 0; i < all->n; i++)
+        if (text_equal(all->at[i], name))
+            return true;
+    return false;
+}
+
+static bool sets_states(const struct growing *g, const char *option)
+{
+    const struct hidden *h = &g->b->worlds.hidden;
+    for (size_t i = 0; i < h->n_states; i++)
+        if (state_renewed(h->states[i]->data, option))
+            return true;
+    return false;
+}
+
+/* Does it depend on the option having been applied what else may be, or what that brings? */
+static bool binds_others(const struct growing *g, const char *option)
+{
+    const struct objects *all = &g->f->base->of[KIND_OPTION];
+    const struct option *o = model_get(g->f->base, KIND_OPTION, option);
+    if (o->excludes.n || o->combine.n)
+        return true;
+    for (size_t i = 0; i < all->n; i++) {
+        const struct option *q = all->at[i]->data;
+        if (has_name(&q->excludes, option) || has_name(&q->requires, option))
+            return true;
+        for (size_t k = 0; k < q->combine.n; k++)
+            if (text_equal(q->combine.keys[k], option))
+                return true;
+    }
+    return false;
+}
+
 /* Does what comes depend on the option having been applied? One that only sets states leaves no
- * trace beside these. */
+ * trace beside these; one that does not can be applied once. */
 static bool leaves_trace(struct growing *g, const struct standing *s, const struct applied *x)
 {
     const struct option *o = model_get(g->f->base, KIND_OPTION, x->option);
-    return o->change->n > 0 || o->running || o->residual ||
+    return o->change->n > 0 || o->running || o->residual || binds_others(g, x->option) ||
+           (g->b->repeats && !sets_states(g, x->option)) ||
            timeline_is_dated(g->f, &s->done, x, s->time);
 }
 
@@ -269,6 +305,37 @@ static const char *quantity_words(struct growing *g, const struct quantity *q)
     return quantity_reads(g->f, q);
 }
 
+/* The option that is applied already and excludes this one, or is excluded by it; or NULL. */
+static const char *excluded_by(const struct growing *g, const struct path *p, const char *option)
+{
+    const struct option *o = model_get(g->f->base, KIND_OPTION, option);
+    for (size_t i = 0; i < p->applied.n; i++) {
+        const char *other = p->applied.at[i].option;
+        const struct option *q = model_get(g->f->base, KIND_OPTION, other);
+        if (has_name(&o->excludes, other) || has_name(&q->excludes, option))
+            return other;
+    }
+    return NULL;
+}
+
+/* Why an option cannot be applied here, or NULL. */
+static const char *why_not(const struct growing *g, const struct standing *s, const char *option)
+{
+    const struct option *o = model_get(g->f->base, KIND_OPTION, option);
+    const char *other = excluded_by(g, &s->done, option);
+    if (other)
+        return arena_printf(g->f->arena,
+                            "the options \"%s\" and \"%s\" exclude each other, and both are "
+                            "applied",
+                            other, option);
+    for (size_t k = 0; k < o->requires.n; k++)
+        if (!applied_in(&s->done, o->requires.at[k]))
+            return arena_printf(g->f->arena,
+                                "the option \"%s\" requires \"%s\", which is not applied before it",
+                                option, o->requires.at[k]);
+    return NULL;
+}
+
 /* An option that is applied again replaces what it brought before. */
 static ohmen_status apply(struct growing *g, struct way *b, struct standing *s, const char *option,
                           ohmen_error *e)
@@ -282,6 +349,9 @@ static ohmen_status apply(struct growing *g, struct way *b, struct standing *s, 
     if (before && (!g->b->repeats || life.renewed))
         return fail_at(g, b->path, e,
                        arena_printf(g->f->arena, "the option \"%s\" is applied twice", option));
+    const char *why = why_not(g, s, option);
+    if (why)
+        return fail_at(g, b->path, e, why);
     struct move *m = add_move(g, b, MOVE_APPLY, s->time);
     m->what = option;
     m->before = before ? before->later : -1;
@@ -310,17 +380,25 @@ static const struct reading_test *test_of(struct growing *g, const char *inspect
     return NULL;
 }
 
+/* What is paid at the end of the horizon, or would be behind it, is no cost. */
+static void pay(struct growing *g, struct way *b, const struct standing *s,
+                const struct quantity *paid, const char *what)
+{
+    if (s->time >= g->horizon - SAME_TIME)
+        return;
+    struct move *m = add_move(g, b, MOVE_PAY, s->time);
+    m->paid = paid;
+    m->what = what;
+}
+
 static void pay_for_test(struct growing *g, struct way *b, const struct standing *s,
                          const char *inspect)
 {
     size_t state;
     const char *name;
     const struct reading_test *t = test_of(g, inspect, &state, &name);
-    if (!t || !t->costs)
-        return;
-    struct move *m = add_move(g, b, MOVE_PAY, s->time);
-    m->paid = t->costs;
-    m->what = inspect;
+    if (t && t->costs)
+        pay(g, b, s, t->costs, inspect);
 }
 
 static ohmen_status grow_point(struct growing *g, enum point_kind kind, const struct step *step,
@@ -358,9 +436,7 @@ static ohmen_status take_step(struct growing *g, struct way *b, struct standing 
                               const struct step *step, struct text *words, ohmen_error *e)
 {
     if (step->pay) {
-        struct move *m = add_move(g, b, MOVE_PAY, s->time);
-        m->paid = step->pay;
-        m->what = "pay";
+        pay(g, b, s, step->pay, "pay");
         say(words, "pay %s", quantity_words(g, step->pay));
         return OHMEN_OK;
     }
@@ -685,22 +761,10 @@ static bool may_apply(struct growing *g, const struct standing *s, const struct 
 {
     const char *option = ((const struct step *const *)steps->at)[at]->apply;
     const struct option *o = model_get(g->f->base, KIND_OPTION, option);
-    const struct hidden *h = &g->b->worlds.hidden;
-    bool renews = false;
-    for (size_t i = 0; i < h->n_states; i++)
-        renews = renews || state_renewed(h->states[i]->data, option);
-    if (applied_in(&s->done, option) && (!renews || o->renewed))
+    if (applied_in(&s->done, option) && (!sets_states(g, option) || o->renewed))
         return false;
-    for (size_t i = 0; i < s->done.applied.n; i++) {
-        const char *other = s->done.applied.at[i].option;
-        const struct option *q = model_get(g->f->base, KIND_OPTION, other);
-        for (size_t k = 0; k < o->excludes.n; k++)
-            if (text_equal(o->excludes.at[k], other))
-                return false;
-        for (size_t k = 0; k < q->excludes.n; k++)
-            if (text_equal(q->excludes.at[k], option))
-                return false;
-    }
+    if (excluded_by(g, &s->done, option))
+        return false;
     for (size_t k = 0; k < o->requires.n; k++) {
         bool there = applied_in(&s->done, o->requires.at[k]) != NULL;
         for (size_t i = 0; i < at && !there; i++) {

@@ -220,14 +220,18 @@ static void compile_amounts(struct rolling *r, struct way *b)
     for (size_t k = 0; k < n; k++)
         amounts[k] = plus(r, cost.at[k], damage.at[k]);
     b->amounts = amounts;
+    b->costs = cost.at;
 }
 
 static void take_amount(const struct figures *f, struct way *b, size_t n)
 {
-    b->amount = 0;
-    for (size_t k = 0; k < n; k++)
-        if (b->belief[k] > 0)
-            b->amount += b->belief[k] * value_of(f, b->amounts[k]);
+    b->amount = b->cost = 0;
+    for (size_t k = 0; k < n; k++) {
+        if (!(b->belief[k] > 0))
+            continue;
+        b->amount += b->belief[k] * value_of(f, b->amounts[k]);
+        b->cost += b->belief[k] * value_of(f, b->costs[k]);
+    }
 }
 
 size_t branching_count(const struct branching *b)
@@ -323,6 +327,24 @@ static void read_results(struct branching *b, const double *value, const uint32_
     }
 }
 
+/* What is paid from the beginning of each branch on: points come behind all that they lead to. */
+static void add_up_costs(struct branching *b, struct arena *a)
+{
+    double *paid = NEW_ARRAY(a, b->points.n, double);
+    for (size_t i = 0; i < b->points.n; i++) {
+        struct point *p = &b->points.at[b->order[i]];
+        double *sum = &paid[b->order[i]];
+        for (size_t k = 0; k < p->n; k++) {
+            struct way *x = &p->branches[k];
+            x->whole_cost = x->cost + paid[x->to];
+            *sum += p->kind != POINT_CHOOSE ? x->probability * x->whole_cost
+                    : p->best == k          ? x->whole_cost
+                                            : 0;
+        }
+        p->whole_cost = *sum;
+    }
+}
+
 ohmen_status branching_roll_back(struct branching *b, struct figures *f, ohmen_error *e)
 {
     struct rolling r = {.b = b};
@@ -338,6 +360,7 @@ ohmen_status branching_roll_back(struct branching *b, struct figures *f, ohmen_e
     rollback_policy(b->laid_out, isa_best(), value, chosen);
     rollback_reach(b->laid_out, chosen, reach);
     read_results(b, value, chosen, reach);
+    add_up_costs(b, f->arena);
     b->nothing->value = b->nothing->amount;
     return OHMEN_OK;
 }

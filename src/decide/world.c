@@ -233,6 +233,17 @@ static void add_failures(struct flowing_states *s, size_t i)
     }
 }
 
+static ohmen_status enough_flows(const struct worlds *x, const struct world *w, ohmen_error *e)
+{
+    if (w->flows.n <= CHAIN_MOST_FLOWS)
+        return OHMEN_OK;
+    return error_set(
+        e, OHMEN_COMPUTE,
+        "the unknown states that \"%s\" follows have %zu transitions together, at most "
+        "%d are possible",
+        x->w->id, w->flows.n, CHAIN_MOST_FLOWS);
+}
+
 static ohmen_status compile_flows(struct worlds *x, struct world *w, ohmen_error *e)
 {
     const struct hidden *h = &x->hidden;
@@ -254,7 +265,7 @@ static ohmen_status compile_flows(struct worlds *x, struct world *w, ohmen_error
     }
     w->unit = b.unit;
     compiled_end(&b);
-    return OHMEN_OK;
+    return enough_flows(x, w, e);
 }
 
 ohmen_status world_of(struct worlds *x, const struct variant *v, struct world **out, ohmen_error *e)

@@ -224,6 +224,8 @@ static void avoids(struct memo *m)
         report_note(m->j->report, "avoids", "Avoids: nothing. %s", why_nothing(m));
         return;
     }
+    if (m->w->branching) /* what it avoids is not the same each year */
+        return;
     const char *by = avoids_by_perspective(m);
     report_note(m->j->report, "avoids", "Avoids per year, once in service: %s (%s)%s%s.%s%s",
                 money_rate(m, value_of(m, x->avoids)), perspective_words(m->j),
