@@ -482,7 +482,11 @@ static node_id price_of(struct telling *t, const struct way *b)
     for (size_t i = 0; i < b->moves.n; i++)
         if (b->moves.at[i].kind == MOVE_PAY)
             only.moves.at[only.moves.n++] = b->moves.at[i];
-    return branching_back(&t->r, &only, NULL, NULL).at[0];
+    struct by_state paid = branching_back(&t->r, &only, NULL, NULL); /* the same in all of them */
+    size_t k = 0;
+    while (k + 1 < hidden_in(t) && !(b->belief[k] > 0))
+        k++;
+    return paid.at[k];
 }
 
 /* An alternative that begins with an inspection: against the best of the others. */

@@ -120,8 +120,27 @@ static node_id mixed(struct rolling *r, const node_id *shares, const node_id *am
     return k == 1 ? terms[0] : graph_op(graph_in(r), OP_SUM, k, terms);
 }
 
+/* Which hidden states are possible behind a move, of those that are before it. */
+static bool *possible_behind(struct rolling *r, const struct move *m, const bool *before)
+{
+    size_t n = r->b->worlds.hidden.n;
+    bool *after = NEW_ARRAY(r->worth.f->arena, n, bool);
+    const struct passage *p = NULL;
+    if (m->kind == MOVE_TIME && m->world->flows.n)
+        world_passage(&r->b->worlds, m->world, m->to - m->at, &p, NULL); /* it is known */
+    for (size_t k = 0; k < n; k++) {
+        if (!before[k])
+            continue;
+        for (size_t i = 0; p && i < n; i++)
+            after[i] = after[i] || p->p[k * n + i] > 0;
+        if (!p)
+            after[m->kind == MOVE_RESET ? m->map[k] : k] = true;
+    }
+    return after;
+}
+
 static void back_over_time(struct rolling *r, const struct move *m, const struct measure *of,
-                           struct by_state *x)
+                           const bool *possible, struct by_state *x)
 {
     size_t n = r->b->worlds.hidden.n;
     node_id *before = NEW_ARRAY(r->worth.f->arena, n, node_id);
@@ -131,6 +150,9 @@ static void back_over_time(struct rolling *r, const struct move *m, const struct
     for (size_t k = 0; k < n; k++)
         inside[k] = of ? measured(r, m, of, k) : NODE_NONE;
     for (size_t k = 0; k < n; k++) {
+        before[k] = NODE_NONE;
+        if (!possible[k])
+            continue;
         node_id then = p ? mixed(r, &p->to[k * n], x->at) : x->at[k];
         node_id now = p ? mixed(r, &p->time[k * n], inside) : inside[k];
         before[k] = plus(r, now, then);
@@ -139,13 +161,13 @@ static void back_over_time(struct rolling *r, const struct move *m, const struct
 }
 
 static void back_over(struct rolling *r, const struct move *m, const struct measure *of,
-                      struct by_state *x)
+                      const bool *possible, struct by_state *x)
 {
     size_t n = r->b->worlds.hidden.n;
     node_id *before = NEW_ARRAY(r->worth.f->arena, n, node_id);
     node_id paid = NODE_NONE;
     if (m->kind == MOVE_TIME) {
-        back_over_time(r, m, of, x);
+        back_over_time(r, m, of, possible, x);
         return;
     }
     if (m->kind == MOVE_PAY && !of)
@@ -153,7 +175,9 @@ static void back_over(struct rolling *r, const struct move *m, const struct meas
     if (m->kind == MOVE_APPLY && !of)
         paid = m->before < 0 ? cost_first(r, m) : cost_again(r, m);
     for (size_t k = 0; k < n; k++)
-        before[k] = m->kind == MOVE_RESET ? x->at[m->map[k]] : plus(r, paid, x->at[k]);
+        before[k] = !possible[k]            ? NODE_NONE
+                    : m->kind == MOVE_RESET ? x->at[m->map[k]]
+                                            : plus(r, paid, x->at[k]);
     x->at = before;
 }
 
@@ -193,9 +217,16 @@ struct by_state branching_back(struct rolling *r, const struct way *b, const str
     struct by_state x = {NEW_ARRAY(r->worth.f->arena, n, node_id)};
     for (size_t k = 0; k < n; k++)
         x.at[k] = end ? end->at[k] : NODE_NONE;
+    const bool **possible = NEW_ARRAY(r->worth.f->arena, b->moves.n + 1, const bool *);
+    bool *first = NEW_ARRAY(r->worth.f->arena, n, bool);
+    for (size_t k = 0; k < n; k++)
+        first[k] = b->belief[k] > 0;
+    possible[0] = first;
+    for (size_t i = 0; i < b->moves.n; i++)
+        possible[i + 1] = possible_behind(r, &b->moves.at[i], possible[i]);
     for (size_t i = b->moves.n; i > 0; i--) {
         const struct move *over = &b->moves.at[i - 1];
-        back_over(r, over, m, &x);
+        back_over(r, over, m, possible[i - 1], &x);
         if (over->kind == MOVE_TIME && over->world->flows.n)
             branching_tell(r, b->path, m, over->at, &x);
     }

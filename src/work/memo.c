@@ -68,6 +68,8 @@ static const struct option *option_of(const struct memo *m, const char *id)
 static const char *options_words(const struct memo *m, const struct alternative *x)
 {
     struct text t;
+    if (m->w->branching)
+        return x->name;
     text_init(&t, m->j->arena);
     for (size_t i = 0; i < x->n; i++)
         text_printf(&t, "%s%s (%s)",
@@ -156,6 +158,13 @@ static void costs(struct memo *m)
                     "Costs: nothing is spent; the damage goes on as today, %s as a present value "
                     "over %g years on the hazards that are weighed here.",
                     money(m, value_of(m, x->present_damage)), m->w->horizon);
+        return;
+    }
+    if (m->w->branching) {
+        report_note(m->j->report, "costs",
+                    "Costs: as a present value %s, the same as %s in each year of the horizon.",
+                    money(m, value_of(m, x->present_cost)),
+                    money_rate(m, value_of(m, x->annual_cost)));
         return;
     }
     const char *once = investments(m, x);

@@ -29,6 +29,7 @@ trap 'exit 130' INT TERM
 python3 "$source/tests/bench/numpy_model.py" "$build/tests/bench/tape" 50 16384
 "$build/tests/bench/draws"
 "$build/tests/bench/rollback" 10000000
+"$build/tests/bench/branching"
 "$build/tests/bench/sampling" 200
 "$build/tests/bench/sampling_diagrams" "$work/skerry.ohmen"
 "$build/tests/bench/sampling_many" 5000

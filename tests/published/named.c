@@ -14,12 +14,17 @@
 static const struct sized {
     const char *name;
     double size; /* in the units that figures come in */
-} units[] = {
-    {"1", 1},          {"%", 0.01},           {"per-a", 1},          {"a", 1},
-    {"h", 1.0 / 8760}, {"min", 1.0 / 525600}, {"s", 1.0 / 31536000}, {"MWh", 1000.0 / 8760},
-    {"GBP", 1},
-
-    {"EUR", 1},          {"USD", 1}};
+} units[] = {{"1", 1},
+             {"%", 0.01},
+             {"per-a", 1},
+             {"a", 1},
+             {"h", 1.0 / 8760},
+             {"min", 1.0 / 525600},
+             {"s", 1.0 / 31536000},
+             {"MWh", 1000.0 / 8760},
+             {"GBP", 1},
+             {"EUR", 1},
+             {"USD", 1}};
 
 /* "h", or of so many: "h/1000". */
 static double unit_size(char *name)
