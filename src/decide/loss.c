@@ -348,3 +348,10 @@ bool loss_is_named(const char *name)
     }
     return false;
 }
+
+bool loss_is_figure(const char *rest)
+{
+    const char *word = properties[PROPERTY_HORIZON_DAMAGE].word;
+    size_t n = strlen(word);
+    return strncmp(rest, word, n) == 0 && (rest[n] == 0 || rest[n] == '.');
+}
