@@ -12,7 +12,7 @@
 #include "decide/loss_samples.h"
 #include "math/aggregate.h"
 
-enum { LOG2_ROUGH = 10, LOG2_ONE = 15, LOG2_MANY = 13, MOST_TRIES = 8, CURVE_POINTS = 48 };
+enum { LOG2_ROUGH = 10, LOG2_ONE = 14, LOG2_MANY = 13, MOST_TRIES = 8, CURVE_POINTS = 48 };
 /* The lattice reaches to where the damage is exceeded with this probability, and a little on. */
 static const double BEYOND_LATTICE = 5e-4, A_LITTLE = 1.1;
 /* How much wider the next lattice is where the last was too narrow. */
@@ -347,4 +347,11 @@ bool loss_is_named(const char *name)
             return true;
     }
     return false;
+}
+
+bool loss_is_figure(const char *rest)
+{
+    const char *word = properties[PROPERTY_HORIZON_DAMAGE].word;
+    size_t n = strlen(word);
+    return strncmp(rest, word, n) == 0 && (rest[n] == 0 || rest[n] == '.');
 }

@@ -131,6 +131,8 @@ ohmen_status loss_of_register(struct figures *f, size_t n, const struct compiled
 /* "D-BUS.exceeded-1[FIT-87B]" */
 const char *loss_name(struct arena *a, const char *owner, enum loss_kind kind, const char *of);
 bool loss_is_named(const char *name);
+/* Is it the rest of a figure OWNER.horizon-damage, which is compiled when it is asked for? */
+bool loss_is_figure(const char *rest);
 /* Splits such a name; false where it is none. */
 bool loss_name_parts(struct arena *a, const char *name, const char **owner, enum loss_kind *kind,
                      const char **of);

@@ -11,6 +11,7 @@
 #include "decide/branching.h"
 #include "decide/cost.h"
 #include "decide/flow.h"
+#include "decide/loss.h"
 #include "decide/worth.h"
 #include "figure/compile.h"
 #include "figure/supply.h"
@@ -371,6 +372,9 @@ ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohm
         const struct alternative *x = c && dot ? flow_alternative(f, w, dot + 1) : NULL;
         if (x)
             status = flow_compile(f, w, x, &unused, e);
+        const struct loss_case *cases;
+        if (c && dot && loss_is_figure(dot + 1))
+            status = loss_of_weighing(f, w, &cases, e);
     } else if (o && o->kind == KIND_OPTION) {
         status = cost_compile(f, o->id, &c, e);
     } else {

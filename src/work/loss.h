@@ -52,7 +52,7 @@ bool utility_is_named(const char *name);
 ohmen_status utility_value_find(struct job *j, const char *name, struct consumed *out,
                                 ohmen_error *e);
 
-/* Compiles what a figure OWNER.horizon-damage belongs to; does nothing for other names. */
+/* Compiles what register.horizon-damage belongs to; does nothing for other names. */
 ohmen_status loss_prepare(struct job *j, const char *figure, ohmen_error *e);
 
 #endif

@@ -67,13 +67,12 @@ ohmen_status loss_value_find(struct job *j, const char *name, struct loss_value 
 
 ohmen_status loss_prepare(struct job *j, const char *figure, ohmen_error *e)
 {
-    const char *word = properties[PROPERTY_HORIZON_DAMAGE].word, *point = strchr(figure, '.');
-    size_t n = strlen(word);
+    const char *point = strchr(figure, '.');
     struct known_loss *unused;
-    if (!point || strncmp(point + 1, word, n) != 0 || (point[1 + n] && point[1 + n] != '.'))
+    if (!point || !loss_is_figure(point + 1) ||
+        !text_equal(arena_strn(j->arena, figure, (size_t)(point - figure)), LOSS_REGISTER))
         return OHMEN_OK;
-    const char *owner = arena_strn(j->arena, figure, (size_t)(point - figure));
-    return find_owner(j, owner, &unused, e);
+    return find_register(j, &unused, e);
 }
 
 /* --- words --- */

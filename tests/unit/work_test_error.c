@@ -76,8 +76,8 @@ START_TEST(unknown_things)
     expect(r, WEIGH, NULL, "H-VH-BUS1", OHMEN_UNKNOWN, "H-VH-BUS1");
     expect(r, SENSITIVITY, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, DAMAGE, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
-    expect(r, EXPLAIN, NULL, "D-TQ.worst-1[TQ]", OHMEN_UNKNOWN, "D-TQ.worst-1[TQ-");
-    expect(r, EXPLAIN, NULL, "register.worst-1[now]", OHMEN_UNKNOWN, "register.worst-1[today]");
+    expect(r, EXPLAIN, NULL, "D-TQ.worst-1[TQ-ARK]", OHMEN_UNKNOWN, "D-TQ.worst-1[TQ-ARC]");
+    expect(r, EXPLAIN, NULL, "register.worst-1[todai]", OHMEN_UNKNOWN, "register.worst-1[today]");
     expect(r, GRID, NULL, "D-VH", OHMEN_UNKNOWN, "D-VH");
     expect(r, EXPLAIN, NULL, "H-VH-BUS1.rsk", OHMEN_UNKNOWN, "did you mean \"risk\"?");
     expect(r, EXPLAIN, NULL, "", OHMEN_UNKNOWN, "");
