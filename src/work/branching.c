@@ -202,6 +202,7 @@ void part_branching(struct job *j, const struct weighing *w)
     else
         part_tree(j, w);
     part_readings(j, w);
+    part_profile(j, w);
 }
 
 void part_branching_sure(struct job *j)
