@@ -190,7 +190,9 @@ const struct command commands[] = {
      .text =
          "Weighs the options of a decision, and their combinations, against doing nothing, "
          "over every hazard that one of them reaches, and tells in how much of what is possible "
-         "each of them is best.",
+         "each of them is best. Of a decision in several stages it draws the tree, or says in "
+         "which condition and year to act, what to do after each reading, what a reading is "
+         "worth against its price, and what each alternative may come to.",
      .example = "ohmen -r skerry.ohmen weigh D-VH-BUS",
      .run = command_weigh},
     {"sensitivity",

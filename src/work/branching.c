@@ -202,14 +202,18 @@ void part_branching(struct job *j, const struct weighing *w)
     else
         part_tree(j, w);
     part_readings(j, w);
+    part_profile(j, w);
 }
 
-void part_branching_sure(struct job *j)
+void part_branching_sure(struct job *j, const struct weighing *w)
 {
     report_note(j->report, "sure-plan",
-                "An unknown state is among what is possible: in each sample one of its values is "
-                "the case, whoever knows it. An alternative is its plan there: behind the first "
-                "choice the branches that are best today are taken, by what was read or seen.");
+                "%sAn alternative is its plan: behind the first choice the branches that are best "
+                "today are taken, by what was read or seen.",
+                w->branching->worlds.hidden.n > 1
+                    ? "An unknown state is among what is possible: in each sample one of its "
+                      "values is the case, whoever knows it. "
+                    : "");
 }
 
 void part_branching_turn(struct job *j)

@@ -27,6 +27,9 @@ const struct way *first_way(const struct branching *b, const struct alternative 
 void part_tree(struct job *j, const struct weighing *w);     /* branching_tree.c */
 void part_readings(struct job *j, const struct weighing *w); /* branching_tree.c */
 
+/* What it may come to (branching_profile.c); nothing where that is certain. */
+void part_profile(struct job *j, const struct weighing *w);
+
 /* Choices that come again (branching_policy.c): the picture and when to act; in a sentence. */
 void part_policy(struct job *j, const struct weighing *w);
 const char *policy_sentence(struct job *j, const struct weighing *w);

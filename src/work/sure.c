@@ -286,7 +286,7 @@ void part_sure_table(struct job *j, const struct weighing *w)
     sure_table(j, known->sure);
     sure_notes(j, known->sure);
     if (w->branching)
-        part_branching_sure(j);
+        part_branching_sure(j, w);
 }
 
 /* --- what it moves with --- */

@@ -169,7 +169,7 @@ void part_branching(struct job *j, const struct weighing *w);
 /* Customer time and deaths over the horizon, where there are any. */
 void part_branching_effects(struct job *j, const struct weighing *w);
 /* How far "how sure" and "what would turn it" hold for it. */
-void part_branching_sure(struct job *j);
+void part_branching_sure(struct job *j, const struct weighing *w);
 void part_branching_turn(struct job *j);
 /* What its memo recommends, in notes. */
 void part_branching_recommendation(struct job *j, const struct weighing *w);
