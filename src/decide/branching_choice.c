@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* A tree as a choice of which the means of its amounts and of the hidden states may be others: it is
+/* A tree as a choice of which the means of its amounts and of hidden states may be others: it is
  * rolled back anew, with beliefs by Bayes' rule from the start on. For what information is worth,
  * which changes what is done later too. */
 #include "decide/branching_choice.h"

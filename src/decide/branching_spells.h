@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Which worlds an alternative of a tree goes through, in which hidden states, for how long: what may
- * come, with its probability, if the policy is followed.
+/* Which worlds an alternative of a tree goes through, in which hidden states, how long: what may
+ * come, with its probability, where the policy is followed.
  *
  * Each path through chances and readings, in each hidden state, is one of the things that may come:
  * so that what is certain once a path is taken is not averaged. Where states change with time, and

@@ -41,15 +41,16 @@ static void must(ohmen_status status, const ohmen_error *e)
 
 static void import_sample(struct checking_all *c, const char *path)
 {
-    static const char *const names[] = {"register", "network", "hazards", "options", "decisions"};
-    const char *files[5];
+    static const char *const names[] = {"register", "network", "hazards",
+                                        "states",   "options", "decisions"};
+    const char *files[6];
     ohmen_register *reg = NULL;
     ohmen_report *report = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
     for (size_t i = 0; i < 5; i++)
         files[i] = arena_printf(c->arena, "%s/%s.yaml", sample, names[i]);
     ohmen_import_settings settings = {
-        .files = files, .n_files = 5, .author = "a test", .reason = "to read it"};
+        .files = files, .n_files = 6, .author = "a test", .reason = "to read it"};
     must(ohmen_create(path, &e), &e);
     must(ohmen_open(path, OHMEN_WRITE, &reg, &e), &e);
     must(ohmen_import(reg, &settings, &report, &e), &e);

@@ -206,7 +206,8 @@ static const char *source_file(struct arena *a, const char *path)
 
 static const struct model *load_folder(struct arena *a, const char *folder)
 {
-    static const char *const files[] = {"register", "network", "hazards", "options", "decisions"};
+    static const char *const files[] = {"register", "network", "hazards",
+                                        "states",   "options", "decisions"};
     struct diags d;
     const struct node *roots[5];
     diags_init(&d, a);

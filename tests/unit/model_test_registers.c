@@ -177,7 +177,8 @@ END_TEST
 
 START_TEST(sample_is_stable)
 {
-    static const char *const files[] = {"register", "network", "hazards", "options", "decisions"};
+    static const char *const files[] = {"register", "network", "hazards",
+                                        "states",   "options", "decisions"};
     const struct node *roots[5];
     struct sheet s = sheet_new();
     struct model_sources sources = {0};

@@ -88,10 +88,12 @@ void test_import_text(struct arena *a, const char *reg, const char *yaml)
 
 const char *const *test_skerry_files(struct arena *a)
 {
-    static const char *const names[] = {"register.yaml", "network.yaml",   "hazards.yaml",
-                                        "options.yaml",  "decisions.yaml", "observations.csv"};
-    const char **files = NEW_ARRAY(a, 7, const char *);
-    for (size_t i = 0; i < 6; i++)
+    static const char *const names[] = {"register.yaml",   "network.yaml", "hazards.yaml",
+                                        "states.yaml",     "options.yaml", "decisions.yaml",
+                                        "observations.csv"};
+    enum { FILES = sizeof names / sizeof *names };
+    const char **files = NEW_ARRAY(a, FILES + 1, const char *);
+    for (size_t i = 0; i < FILES; i++)
         files[i] = arena_printf(a, "%s/samples/skerry/%s", test_source, names[i]);
     return files;
 }

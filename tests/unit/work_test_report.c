@@ -120,7 +120,8 @@ START_TEST(every_kind_is_listed)
         size_t n;
     } lists[] = {{"sources", 13}, {"sites", 3},    {"groups", 2},    {"values", 14},
                  {"rates", 12},   {"types", 7},    {"elements", 51}, {"common-cause", 4},
-                 {"schemes", 20}, {"hazards", 20}, {"options", 20},  {"decisions", 5}};
+                 {"schemes", 20}, {"hazards", 20}, {"options", 23},  {"decisions", 8},
+                 {"states", 3}};
     struct made m = made_new();
     for (size_t i = 0; i < sizeof lists / sizeof *lists; i++) {
         const char *json = list(&m, lists[i].kind);
@@ -132,9 +133,9 @@ END_TEST
 
 START_TEST(every_object_is_shown)
 {
-    static const char *const sections[] = {"sources", "sites",   "groups",   "values",
-                                           "rates",   "types",   "elements", "common-cause",
-                                           "schemes", "hazards", "options",  "decisions"};
+    static const char *const sections[] = {
+        "sources",      "sites",   "groups",  "values",  "rates",     "types", "elements",
+        "common-cause", "schemes", "hazards", "options", "decisions", "states"};
     struct made m = made_new();
     size_t shown = 0;
     for (size_t i = 0; i < sizeof sections / sizeof *sections; i++) {
@@ -146,7 +147,7 @@ START_TEST(every_object_is_shown)
         }
     }
     show(&m, "register");
-    ck_assert_uint_eq(shown, 171);
+    ck_assert_uint_eq(shown, 180);
     made_end(&m);
 }
 END_TEST
