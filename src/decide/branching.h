@@ -51,6 +51,7 @@ struct move {
     double before;               /* MOVE_APPLY: by how much later it was applied before; -1: it was
                                     not */
     struct world *world;         /* MOVE_TIME */
+    size_t span;                 /* MOVE_TIME: equal ones have the same number */
     const size_t *map;           /* MOVE_RESET: the hidden state that each becomes */
 };
 
@@ -59,6 +60,7 @@ struct way {
     const char *path;  /* "survey-first/poor/renew" */
     const char *steps; /* in words; "" for none */
     ARRAY(struct move) moves;
+    size_t number;                /* among all branches of the tree; that of doing nothing last */
     size_t to;                    /* point */
     const struct quantity *share; /* of a chance; NULL for the rest */
     const double *likelihood;     /* of a reading or what is seen, by hidden state; else NULL */
@@ -104,6 +106,7 @@ struct survey_worth {
 struct branching {
     struct weighing *weighing;
     struct worlds worlds;
+    size_t n_spans;             /* different stretches of time in different worlds */
     ARRAY(struct point) points; /* the first is the root */
     size_t *order;              /* of points: each behind all that it leads to */
     bool repeats;

@@ -8,7 +8,8 @@
  * first asked for, along the policy. */
 struct alphas {
     const struct measure *of;
-    struct by_state *at; /* by point; at NULL: not yet */
+    struct by_state *at;        /* by point; at NULL: not yet */
+    struct by_state *of_branch; /* by number, the same */
 };
 
 /* A tree whose figures are being made. */
@@ -58,7 +59,10 @@ static const struct by_state *behind_point(struct telling *t, struct alphas *x, 
 
 static struct by_state behind_branch(struct telling *t, struct alphas *x, const struct way *b)
 {
-    return branching_back(&t->r, b, x->of, behind_point(t, x, b->to));
+    struct by_state *made = &x->of_branch[b->number];
+    if (!made->at)
+        *made = branching_back(&t->r, b, x->of, behind_point(t, x, b->to));
+    return *made;
 }
 
 /* The probability of a branch of chance, as the document states it. */
@@ -128,7 +132,8 @@ static const struct by_state *behind_point(struct telling *t, struct alphas *x, 
 
 static struct alphas alphas_of(struct telling *t, const struct measure *m)
 {
-    return (struct alphas){m, NEW_ARRAY(t->f->arena, t->b->points.n, struct by_state)};
+    return (struct alphas){m, NEW_ARRAY(t->f->arena, t->b->points.n, struct by_state),
+                           NEW_ARRAY(t->f->arena, branching_count(t->b) + 1, struct by_state)};
 }
 
 /* --- what is believed --- */
@@ -137,10 +142,12 @@ static struct alphas alphas_of(struct telling *t, const struct measure *m)
 static void tell_belief(struct telling *t, const char *path, double at, const node_id *belief)
 {
     for (size_t k = 0; k < hidden_in(t); k++) {
+        if (belief[k] == NODE_NONE)
+            continue;
         const char *what =
             arena_printf(t->f->arena, "%s at %.6g a", t->b->worlds.hidden.names[k], at);
         const char *name = arena_printf(t->f->arena, "%s.belief %s", path, what);
-        if (belief[k] == NODE_NONE || strmap_has(t->r.told, name))
+        if (strmap_has(t->r.told, name))
             continue;
         strmap_set(t->f->arena, t->r.told, name, NULL);
         compiled_add(section(t), PROPERTY_BELIEF, path, what, belief[k], NULL, NULL);

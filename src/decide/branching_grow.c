@@ -143,14 +143,23 @@ static void write_path(struct growing *g, struct text *t, const struct standing 
         text_printf(t, "[%s]", s->done.changed.at[i].name);
 }
 
+/* What is possible, with its probability: to SAME_BELIEF. */
+static void write_belief(const struct growing *g, struct text *t, const double *belief)
+{
+    for (size_t k = 0; k < hidden_count(g); k++) {
+        unsigned long parts = (unsigned long)round(belief[k] * SAME_BELIEF);
+        if (parts)
+            text_printf(t, ";%zu:%lu", k, parts);
+    }
+}
+
 static const char *point_key(struct growing *g, const void *place, const struct standing *s)
 {
     struct text t;
     text_init(&t, g->f->arena);
-    text_printf(&t, "%p at %.17g", place, s->time);
+    text_printf(&t, "%p at %a", place, s->time);
     write_path(g, &t, s);
-    for (size_t k = 0; k < hidden_count(g); k++)
-        text_printf(&t, ";%.0f", round(s->belief[k] * SAME_BELIEF));
+    write_belief(g, &t, s->belief);
     return text_str(&t);
 }
 
@@ -234,6 +243,17 @@ static ohmen_status move_beliefs(struct growing *g, struct world *w, struct stan
     return status;
 }
 
+/* The number of a stretch of time in a world. */
+static size_t span_of_move(struct growing *g, const struct move *m)
+{
+    const char *key = arena_printf(g->f->arena, "%p %a %a", (const void *)m->world, m->at, m->to);
+    void *known = strmap_get(&g->spans, key);
+    if (known)
+        return (size_t)known - 1;
+    strmap_set(g->f->arena, &g->spans, key, (void *)++g->b->n_spans);
+    return g->b->n_spans - 1;
+}
+
 /* One stretch with the same variant and without resets inside; by whole years where states change,
  * so that each year has its own damage. */
 static ohmen_status pass_stretch(struct growing *g, struct way *b, struct standing *s,
@@ -247,6 +267,7 @@ static ohmen_status pass_stretch(struct growing *g, struct way *b, struct standi
         struct move *m = add_move(g, b, MOVE_TIME, s->time);
         m->to = end;
         m->world = w;
+        m->span = span_of_move(g, m);
         status = move_beliefs(g, w, s, end - s->time, e);
         s->time = end;
     }
@@ -802,8 +823,7 @@ static ohmen_status count_beliefs(struct growing *g, const struct standing *s, o
     struct text t;
     text_init(&t, g->f->arena);
     text_printf(&t, "%zu", stage);
-    for (size_t k = 0; k < hidden_count(g); k++)
-        text_printf(&t, ";%.0f", round(s->belief[k] * SAME_BELIEF));
+    write_belief(g, &t, s->belief);
     if (strmap_has(&g->believed, text_str(&t)))
         return OHMEN_OK;
     strmap_set(g->f->arena, &g->believed, text_str(&t), NULL);

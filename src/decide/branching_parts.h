@@ -17,6 +17,7 @@ struct growing {
     struct strmap stretches; /* what a path applied -> struct stretches */
     struct strmap paths;     /* of points that were named so */
     struct strmap believed;  /* stage and belief */
+    struct strmap spans;     /* world and time -> (void *)(number + 1) */
     ARRAY(size_t) order;     /* points, each behind what it leads to */
     size_t n_branches;
     size_t *beliefs; /* by stage */
@@ -34,13 +35,19 @@ struct by_state {
     node_id *at;
 };
 
+/* Nodes of one measure in each span of time (NULL: not yet), by hidden state. */
+struct measured {
+    const struct measure *of;
+    node_id **in_span;
+};
+
 /* The section of a tree's figures under construction. */
 struct rolling {
     struct worth worth;
     struct branching *b;
-    struct strmap measured; /* measures of worlds that have a node already */
-    struct strmap stated;   /* quantities of the document that have a node already */
-    struct strmap *told;    /* figures on the way that are there already; NULL: none are made */
+    ARRAY(struct measured) measured; /* measures of worlds that have nodes already */
+    struct strmap stated;            /* quantities of the document that have a node already */
+    struct strmap *told; /* figures on the way that are there already; NULL: none are made */
 };
 
 /* Gives what is to come on the way a figure for each hidden state, "to-come.PATH.damage, aged at

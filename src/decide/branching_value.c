@@ -86,25 +86,28 @@ static node_id cost_again(struct rolling *r, const struct move *m)
     return sum_of(r, n, parts);
 }
 
-static const char *move_key(struct rolling *r, const struct move *m, const struct measure *of,
-                            size_t hidden)
+static struct measured *measured_of(struct rolling *r, const struct measure *of)
 {
-    return arena_printf(r->worth.f->arena, "%p %d %s %zu %.17g %.17g", (const void *)m->world,
-                        (int)of->property, of->of ? of->of : "", hidden, m->at, m->to);
+    for (size_t i = 0; i < r->measured.n; i++)
+        if (r->measured.at[i].of == of)
+            return &r->measured.at[i];
+    struct measured *x = array_push(r->worth.f->arena, &r->measured);
+    *x = (struct measured){of, NEW_ARRAY(r->worth.f->arena, r->b->n_spans, node_id *)};
+    return x;
 }
 
-/* A measure in one hidden state of a world, while it is the case. */
-static node_id measured(struct rolling *r, const struct move *m, const struct measure *of,
-                        size_t hidden)
+/* A measure in each hidden state of a world, while it is the case. */
+static const node_id *measured_in(struct rolling *r, const struct move *m, const struct measure *of)
 {
-    const char *key = move_key(r, m, of, hidden);
-    node_id *known = strmap_get(&r->measured, key);
-    if (!known) {
-        known = NEW(r->worth.f->arena, node_id);
-        *known = world_measure(&r->worth, &r->b->worlds, m->world, hidden, of, m->at, m->to);
-        strmap_set(r->worth.f->arena, &r->measured, key, known);
+    struct measured *x = measured_of(r, of);
+    size_t n = r->b->worlds.hidden.n;
+    if (!x->in_span[m->span]) {
+        node_id *nodes = NEW_ARRAY(r->worth.f->arena, n, node_id);
+        for (size_t k = 0; k < n; k++)
+            nodes[k] = world_measure(&r->worth, &r->b->worlds, m->world, k, of, m->at, m->to);
+        x->in_span[m->span] = nodes;
     }
-    return *known;
+    return x->in_span[m->span];
 }
 
 /* The sum over states of a share times what is there. */
@@ -127,7 +130,7 @@ static bool *possible_behind(struct rolling *r, const struct move *m, const bool
     bool *after = NEW_ARRAY(r->worth.f->arena, n, bool);
     const struct passage *p = NULL;
     if (m->kind == MOVE_TIME && m->world->flows.n)
-        world_passage(&r->b->worlds, m->world, m->to - m->at, &p, NULL); /* it is known */
+        p = world_passage_known(m->world, m->to - m->at);
     for (size_t k = 0; k < n; k++) {
         if (!before[k])
             continue;
@@ -144,17 +147,15 @@ static void back_over_time(struct rolling *r, const struct move *m, const struct
 {
     size_t n = r->b->worlds.hidden.n;
     node_id *before = NEW_ARRAY(r->worth.f->arena, n, node_id);
-    node_id *inside = NEW_ARRAY(r->worth.f->arena, n, node_id);
     const struct passage *p =
         m->world->flows.n ? world_passage_known(m->world, m->to - m->at) : NULL;
-    for (size_t k = 0; k < n; k++)
-        inside[k] = of ? measured(r, m, of, k) : NODE_NONE;
+    const node_id *inside = of ? measured_in(r, m, of) : NULL;
     for (size_t k = 0; k < n; k++) {
         before[k] = NODE_NONE;
         if (!possible[k])
             continue;
         node_id then = p ? mixed(r, &p->to[k * n], x->at) : x->at[k];
-        node_id now = p ? mixed(r, &p->time[k * n], inside) : inside[k];
+        node_id now = !inside ? NODE_NONE : p ? mixed(r, &p->time[k * n], inside) : inside[k];
         before[k] = plus(r, now, then);
     }
     x->at = before;
@@ -199,11 +200,13 @@ void branching_tell(struct rolling *r, const char *path, const struct measure *m
     const struct hidden *h = &r->b->worlds.hidden;
     struct arena *a = r->worth.f->arena;
     for (size_t k = 0; r->told && h->n > 1 && k < h->n; k++) {
+        if (x->at[k] == NODE_NONE)
+            continue;
         const char *what = arena_printf(a, "%s, %s", measure_words(r, m), h->names[k]);
         if (at >= 0)
             what = arena_printf(a, "%s at %.6g a", what, at);
         const char *name = arena_printf(a, "%s.%s", path, what);
-        if (x->at[k] == NODE_NONE || strmap_has(r->told, name))
+        if (strmap_has(r->told, name))
             continue;
         strmap_set(a, r->told, name, NULL);
         compiled_add(&r->worth.b, PROPERTY_TO_COME, path, what, x->at[k], NULL, NULL);
@@ -241,13 +244,12 @@ static double value_of(const struct figures *f, node_id n)
 }
 
 /* Cost and damage on a branch, in each hidden state at its beginning. */
-static void compile_amounts(struct rolling *r, struct way *b)
+static void compile_amounts(struct rolling *r, struct way *b, const struct measure *m)
 {
-    const struct measure m = {PROPERTY_RISK, NULL, dim_money_rate, dim_money};
     size_t n = r->b->worlds.hidden.n;
     node_id *amounts = NEW_ARRAY(r->worth.f->arena, n, node_id);
     struct by_state cost = branching_back(r, b, NULL, NULL);
-    struct by_state damage = branching_back(r, b, &m, NULL);
+    struct by_state damage = branching_back(r, b, m, NULL);
     for (size_t k = 0; k < n; k++)
         amounts[k] = plus(r, cost.at[k], damage.at[k]);
     b->amounts = amounts;
@@ -277,6 +279,7 @@ static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
 {
     struct branching *b = r->b;
     struct figures *f = r->worth.f;
+    const struct measure m = {PROPERTY_RISK, NULL, dim_money_rate, dim_money};
     size_t n = b->worlds.hidden.n;
     compiled_begin_part(f, b->weighing->alternatives.at[0].variant,
                         model_find(f->base, b->weighing->id), b->weighing->id, "amounts",
@@ -284,8 +287,8 @@ static ohmen_status find_amounts(struct rolling *r, ohmen_error *e)
     money_begin(&r->worth.money, f, &r->worth.b, b->weighing->horizon);
     for (size_t i = 0; i < b->points.n; i++)
         for (size_t k = 0; k < b->points.at[i].n; k++)
-            compile_amounts(r, &b->points.at[i].branches[k]);
-    compile_amounts(r, b->nothing);
+            compile_amounts(r, &b->points.at[i].branches[k], &m);
+    compile_amounts(r, b->nothing, &m);
     compiled_end(&r->worth.b);
     ohmen_status status = figures_evaluate(f, e);
     if (status != OHMEN_OK)
@@ -323,6 +326,8 @@ static void lay_out(struct branching *b, struct arena *a)
     size_t first = b->points.n;
     for (size_t i = 0; i < b->points.n; i++) {
         b->points.at[i].first_branch = first - b->points.n;
+        for (size_t k = 0; k < b->points.at[i].n; k++)
+            b->points.at[i].branches[k].number = first - b->points.n + k;
         add_point(b, to, a, i, first);
         first += b->points.at[i].n;
     }
@@ -331,6 +336,7 @@ static void lay_out(struct branching *b, struct arena *a)
             const struct way *x = &b->points.at[i].branches[k];
             rollback_add(to, ROLLBACK_STEP, -x->amount, 1, &x->to, NULL);
         }
+    b->nothing->number = first - b->points.n;
     b->laid_out = rollback_lay_out(to, 0, &first);
 }
 

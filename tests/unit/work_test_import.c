@@ -96,7 +96,7 @@ START_TEST(a_dry_run_stores_nothing)
     struct test_state before = test_state(reg);
     ohmen_report *r = NULL;
     ohmen_error e = OHMEN_ERROR_INIT;
-    ohmen_import_settings s = {.files = files, .n_files = 6, .dry_run = true};
+    ohmen_import_settings s = {.files = files, .n_files = 7, .dry_run = true};
     ohmen_register *open = test_open(reg, OHMEN_READ);
     must(ohmen_import(open, &s, &r, &e), &e);
     ohmen_close(open);
