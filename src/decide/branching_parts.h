@@ -37,7 +37,7 @@ struct by_state {
 
 /* Nodes of one measure in each span of time (NULL: not yet), by hidden state. */
 struct measured {
-    const struct measure *of;
+    struct measure of;
     node_id **in_span;
 };
 

@@ -89,10 +89,12 @@ static node_id cost_again(struct rolling *r, const struct move *m)
 static struct measured *measured_of(struct rolling *r, const struct measure *of)
 {
     for (size_t i = 0; i < r->measured.n; i++)
-        if (r->measured.at[i].of == of)
+        if (r->measured.at[i].of.property == of->property &&
+            text_equal(r->measured.at[i].of.of ? r->measured.at[i].of.of : "",
+                       of->of ? of->of : ""))
             return &r->measured.at[i];
     struct measured *x = array_push(r->worth.f->arena, &r->measured);
-    *x = (struct measured){of, NEW_ARRAY(r->worth.f->arena, r->b->n_spans, node_id *)};
+    *x = (struct measured){*of, NEW_ARRAY(r->worth.f->arena, r->b->n_spans, node_id *)};
     return x;
 }
 
