@@ -489,6 +489,23 @@ CREATE TABLE "state_becomes_item"( -- Transitions per year
     PRIMARY KEY("state", "path")
 ) STRICT, WITHOUT ROWID;
 
+CREATE TABLE "state_failures"( -- The state that each outcome leads to
+    "state" TEXT NOT NULL, -- Id of the object
+    "path" TEXT NOT NULL, -- Where in the object it stands
+    "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
+    "key" TEXT NOT NULL, -- Name of the row
+    PRIMARY KEY("state", "path")
+) STRICT, WITHOUT ROWID;
+
+CREATE TABLE "state_failures_item"( -- The state that it enters
+    "state" TEXT NOT NULL, -- Id of the object
+    "path" TEXT NOT NULL, -- Where in the object it stands
+    "within" TEXT NOT NULL, -- Path of the row that it stands in; empty: none
+    "key" TEXT NOT NULL, -- Name of the row
+    "value" TEXT, -- The state that it enters
+    PRIMARY KEY("state", "path")
+) STRICT, WITHOUT ROWID;
+
 CREATE TABLE "state_renewed_by"( -- The state that it enters
     "state" TEXT NOT NULL, -- Id of the object
     "path" TEXT NOT NULL, -- Where in the object it stands
@@ -624,6 +641,7 @@ CREATE TABLE "decision"( -- A question with its options or its tree
     "review" TEXT, -- When it is to be looked at again
     "every" TEXT, -- The choice comes again after this time
     "risk_tolerance" TEXT, -- Of exponential utility: the greater, the less a wide spread of damage counts
+    "beliefs" INTEGER, -- Most beliefs about unknown states at one choice; 1000 where it is left out
     "note" TEXT, -- Anything else
     PRIMARY KEY("id")
 ) STRICT, WITHOUT ROWID;

@@ -344,8 +344,8 @@ ohmen_status weigh_ranked(struct figures *f, const char *decision, struct weighi
     return status;
 }
 
-/* Figures of worlds under some changes have these in their names. */
-static bool find_changed(struct figures *f, const struct compiled *u, const char *name,
+/* By the whole name: figures of worlds under some changes have these in theirs. */
+static bool find_named(struct figures *f, const struct compiled *u, const char *name,
                          figure_id *out)
 {
     for (const struct compiled *part = u; part; part = part->also)
@@ -380,7 +380,7 @@ ohmen_status weigh_find(struct figures *f, const char *name, figure_id *out, ohm
     } else {
         return figures_find(f, name, out, e);
     }
-    if (status == OHMEN_OK && strchr(name, '@') && find_changed(f, c, name, out))
+    if (status == OHMEN_OK && find_named(f, c, name, out))
         return OHMEN_OK;
     return status == OHMEN_OK ? compiled_find(f, c, dot ? dot + 1 : "", out, e) : status;
 }

@@ -114,7 +114,7 @@ static ohmen_status unknown_of_mean(struct figures *f, const struct compiled *u,
     const char *name = figure_name(f, f->arena, first->main);
     return error_set(
         e, OHMEN_UNKNOWN,
-        "\"%s\" has no figure \"%s\": it is a mean over operating states, whose figures "
+        "\"%s\" has no figure \"%s\": it is a mean over states, whose figures "
         "have their state in the name, as %s",
         u->id, rest, name);
 }

@@ -543,6 +543,19 @@ struct below {
     ARRAY(const char *) hazards;
 };
 
+/* What fails with others depends on what they have in common, and so on what these refer to. */
+static void add_groups(struct figures *f, const struct model *m, const struct object *o,
+                       struct below *b)
+{
+    struct groups groups = {0};
+    if (!o || o->kind != KIND_ELEMENT)
+        return;
+    groups_of(f, m, o->id, &groups);
+    for (size_t i = 0; i < groups.n; i++)
+        if (!strmap_has(&b->seen, groups.at[i]->id))
+            strmap_set(f->arena, &b->seen, groups.at[i]->id, NULL);
+}
+
 /* The hazards that an object refers to, directly or not; the object itself where it is one. */
 static void hazards_below(struct figures *f, const struct model *m, const char *id, struct below *b)
 {
@@ -553,6 +566,7 @@ static void hazards_below(struct figures *f, const struct model *m, const char *
             *array_push(f->arena, &b->hazards) = o->id;
             continue;
         }
+        add_groups(f, m, o, b);
         for (size_t r = 0; o && r < o->refs.n; r++) {
             const struct object *to = model_find(m, o->refs.at[r].id);
             if (reference_computes(&o->refs.at[r], to) && !strmap_has(&b->seen, to->id))

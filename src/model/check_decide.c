@@ -93,7 +93,7 @@ static void check_probabilities(struct checking *c, const struct state *s, const
 {
     for (size_t i = 0; i < s->is.n; i++) {
         const struct quantity *q = plain_share(&s->is, i);
-        if (q->expr && !quantity_is_constant(q))
+        if (q->expr && !quantity_is_constant(q) && check_is_certain(c, q)) /* else it is told */
             diag_add(c->diags, is->pairs[i].value->place, "a plain number is needed here");
     }
 }

@@ -36,9 +36,11 @@ static const struct exposure_case {
     {"x: {from: 2025-01-01, amount: 2 section}", 2026, 12, 31, 4},
     /* one after the other, and both at once: they add up */
     {"x: {from: 2025-01-01, to: 2025-12-31, amount: 3 section}, "
-     "y: {from: 2026-01-01, to: 2026-12-31, amount: 4 section}", 2026, 12, 31, 7},
+     "y: {from: 2026-01-01, to: 2026-12-31, amount: 4 section}",
+     2026, 12, 31, 7},
     {"x: {from: 2025-01-01, to: 2025-12-31, amount: 3 section}, "
-     "y: {from: 2025-01-01, to: 2025-12-31, amount: 3 section}", 2026, 12, 31, 6},
+     "y: {from: 2025-01-01, to: 2025-12-31, amount: 3 section}",
+     2026, 12, 31, 6},
 };
 #define EXPOSURES ((int)(sizeof exposures / sizeof exposures[0]))
 
@@ -70,8 +72,7 @@ static void refused(const char *stretch, const char *words)
     struct sheet s = sheet_of(arena_printf(
         scratch, "prior: {mean: 0.1 per section a, weight: 2}, events: 0, exposure: {x: {%s}}",
         stretch));
-    ck_assert_int_eq(posterior_rate(s.arena, rate_of(&s), "r", LOADED_DATE, &q, &e),
-                     OHMEN_COMPUTE);
+    ck_assert_int_eq(posterior_rate(s.arena, rate_of(&s), "r", LOADED_DATE, &q, &e), OHMEN_COMPUTE);
     ck_assert_str_eq(e.text, words);
     ck_assert_ptr_null(q);
     figure_id id;
@@ -153,11 +154,13 @@ static const struct bad_case {
     {"prior: {form: jeffreys}, exposure: {x: {from: 2020-01-01, amount: 1 section}}", 64,
      "exposure needs \"events\""},
     {"prior: {mean: 1 per section a, weight: 1}, exposure: {x: {from: 2020-01-01, amount: 1 "
-     "section}}", 82, "exposure needs \"events\""},
+     "section}}",
+     82, "exposure needs \"events\""},
     {"is: 1 per section a, events: 3", 58, "events and exposure go with a prior"},
     {"prior: {form: jeffreys}", 36, "a Jeffreys prior says nothing by itself"},
     {"prior: {form: fixed, mean: 1 per section a}, events: 0, exposure: {x: {from: 2020-01-01, "
-     "amount: 1 section}}", 82, "a fixed rate learns nothing"},
+     "amount: 1 section}}",
+     82, "a fixed rate learns nothing"},
     {"prior: {mean: 1 per section a, error-factor: 1.01}", 74, "too small for a gamma"},
     {"prior: {mean: 1 per section a, error-factor: 1}", 74, "greater than 1"},
     {"prior: {mean: 1 per section a, p95: 2 per section a}", 65,
@@ -180,7 +183,8 @@ static const struct bad_case {
     {"prior: {p5: 1 per section a, p50: 2 per section a, p95: 4 per section a}", 36,
      "found p5, p50, p95"},
     {"prior: {form: jeffreys, mean: 1 per section a}, events: 1, exposure: {x: {from: "
-     "2020-01-01, amount: 1 section}}", 36, "of the form jeffreys takes no other keys; found mean"},
+     "2020-01-01, amount: 1 section}}",
+     36, "of the form jeffreys takes no other keys; found mean"},
     {"prior: {form: lognormal, mean: 1 per section a, weight: 1}", 36,
      "of the form lognormal takes median and error-factor"},
     {"prior: {form: constrained, mean: 1 per section a, weight: 1}", 36, "takes mean alone"},
@@ -189,8 +193,8 @@ static const struct bad_case {
     {"is: 1 per section a, growth: -91 % per a", 58, "growth lies between"},
     {"is: 1 per section a, growth: 9.1 per a", 58, "growth lies between"},
     {"prior: {form: jeffreys}, ageing: 2, since: 2020-01-02, events: 1, exposure: {x: {from: "
-     "2020-01-01, amount: 1 section}}", 116,
-     "begins before what ages was there (\"since\" is 2020-01-02)"},
+     "2020-01-01, amount: 1 section}}",
+     116, "begins before what ages was there (\"since\" is 2020-01-02)"},
     {"is: 1 per section a, kinds: {earth: 3}", 57, "two kinds of fault or more, found 1"},
     {"is: 1 per section a, kinds: {}", 57, "two kinds of fault or more, found 0"},
     {"is: 1 per section a, kinds-prior: uniform", 63, "goes with counts of \"kinds\""},
@@ -201,12 +205,14 @@ static const struct bad_case {
      "the rate \"r\" counts no kind of fault \"earth\""},
     {"is: 1 per section a, kinds: {earth: 3, other: 4}}, q: {per: a, is: share(r; erth) * 1 per a",
      96, "the rate \"r\" counts no kind of fault \"erth\" (did you mean \"earth\"?)"},
-    {"is: 1 per section a, kinds: {earth: 3, other: 4}}, q: {per: a, is: share(r; earth) * 1 a",
-     96, "expected 1 / time, found time"},
+    {"is: 1 per section a, kinds: {earth: 3, other: 4}}, q: {per: a, is: share(r; earth) * 1 a", 96,
+     "expected 1 / time, found time"},
     {"is: 1 per section a, kinds: {earth: 3, other: 4, x: 0}}}\noptions: {O: {name: O, change: "
-     "{rates: {r: {kinds: {earth: no}}}}", 57, "a change cannot take the kind \"earth\""},
+     "{rates: {r: {kinds: {earth: no}}}}",
+     57, "a change cannot take the kind \"earth\""},
     {"is: 1 per section a, kinds: {earth: 3, other: 4}}}\nstates: {Z: {is: {sound: share(r; "
-     "earth), aged: rest}", 26, "a name in it is uncertain", 3},
+     "earth), aged: rest}",
+     26, "a name in it is uncertain", 3},
 };
 #define BAD ((int)(sizeof bad / sizeof bad[0]))
 
@@ -223,7 +229,7 @@ START_TEST(refused_with_its_place)
     ck_assert_ptr_null(model_load(a, all.at, all.n, &d));
     diags_sort(&d);
     const char *line = diag_line(a, &d.list.at[0]);
-    ck_assert_uint_eq(d.count, 1);
+    ck_assert_msg(d.count == 1, "%s and %zu more", line, d.count - 1);
     ck_assert_msg(strstr(line, c->words) != NULL, "%s", line);
     const struct place *at = &d.list.at[0].place;
     ck_assert_msg(at->line == (c->line ? c->line : 2) && at->column == c->column, "%s: %s", line,

@@ -152,13 +152,26 @@ static void change_objects(struct arena *a, struct model_sources *out, const str
                           &change->pairs[s].value->pairs[k]);
 }
 
+/* Without the options that renew it, which are not there. */
+static struct node *plain_state(struct arena *a, const struct node *state)
+{
+    struct node *out = node_map(a, state->place);
+    for (size_t i = 0; i < state->n; i++)
+        if (!text_equal(state->pairs[i].key, "renewed-by"))
+            node_add(a, out, state->pairs[i].key, state->pairs[i].place, state->pairs[i].value);
+    return out;
+}
+
 void merge_options(struct arena *a, const struct model *base, size_t n, const char *const *options,
                    struct model_sources *out)
 {
     for (int k = 0; k < KIND_COUNT; k++)
         for (size_t i = 0; i < base->of[k].n; i++) {
             const struct object *o = base->of[k].at[i];
-            if (k != KIND_OPTION && k != KIND_DECISION && k != KIND_PLAN && k != KIND_STATE)
+            if (k == KIND_STATE)
+                *array_push(a, out) =
+                    (struct model_source){o->kind, o->id, plain_state(a, o->node)};
+            else if (k != KIND_OPTION && k != KIND_DECISION && k != KIND_PLAN)
                 *array_push(a, out) = (struct model_source){o->kind, o->id, o->node};
         }
     for (size_t i = 0; i < n; i++)
