@@ -4,6 +4,8 @@
  * which changes what is done later too. */
 #include "decide/branching_choice.h"
 
+#include "figure/states.h"
+
 struct rerolling {
     const struct branching *b;
     struct rollback layout; /* with amounts and probabilities of its own */
@@ -241,47 +243,70 @@ ohmen_status branching_sample(struct figures *f, struct arena *a, const struct c
 
 /* --- unknown states --- */
 
-static bool reaches(const struct figures *f, const struct weighing *w, const struct object *o)
+/* The state as some variant leaves it alone: under each change that reaches it, as by a hazard
+ * whose failures renew it, there is one more. What an option sets is known. */
+static bool is_of(const struct figures *f, const struct compiled *u, const struct object *o)
 {
-    const struct building under = {.figures = (struct figures *)f,
-                                   .variant = w->alternatives.at[0].variant};
-    return ((const struct state *)o->data)->is.n > 0 && compiled_of(&under, o->id) != NULL;
+    double when;
+    return u->object && u->object->kind == KIND_STATE && !u->part && text_equal(u->id, o->id) &&
+           !states_reset(f, u->variant, u->object->data, &when);
+}
+
+struct share_nodes {
+    ARRAY(node_id) nodes;
+    ARRAY(size_t) values; /* which value of the state each is the share of */
+    const struct compiled *first;
+};
+
+static void find_shares(struct arena *a, const struct figures *f, const struct object *o,
+                        struct share_nodes *out)
+{
+    const struct rows *rows = state_values(o->data);
+    for (size_t i = 0; i < f->units.n; i++) {
+        const struct compiled *u = f->units.at[i];
+        for (size_t k = 0; is_of(f, u, o) && k < rows->n; k++) {
+            figure_id id = compiled_figure(f, u, PROPERTY_SHARE, rows->keys[k], NULL);
+            out->first = out->first ? out->first : u;
+            *array_push(a, &out->nodes) = figure_at(f, id)->node;
+            *array_push(a, &out->values) = k;
+        }
+    }
 }
 
 static struct unknown_state state_of(struct arena *a, const struct figures *f,
-                                     const struct weighing *w, const struct object *o)
+                                     const struct object *o, const struct share_nodes *all)
 {
-    const struct building under = {.figures = (struct figures *)f,
-                                   .variant = w->alternatives.at[0].variant};
-    const struct compiled *u = compiled_of(&under, o->id);
     const struct rows *rows = state_values(o->data);
-    node_id *nodes = NEW_ARRAY(a, rows->n, node_id);
     double *probabilities = NEW_ARRAY(a, rows->n, double);
-    double *values = NEW_ARRAY(a, rows->n * rows->n, double);
+    double *values = NEW_ARRAY(a, rows->n * all->nodes.n, double);
     for (size_t i = 0; i < rows->n; i++) {
-        figure_id id = compiled_figure(f, u, PROPERTY_SHARE, rows->keys[i], NULL);
-        nodes[i] = figure_at(f, id)->node;
-        probabilities[i] = figure_value(f, id);
-        values[i * rows->n + i] = 1;
+        probabilities[i] =
+            figure_value(f, compiled_figure(f, all->first, PROPERTY_SHARE, rows->keys[i], NULL));
+        for (size_t k = 0; k < all->nodes.n; k++)
+            values[i * all->nodes.n + k] = all->values.at[k] == i;
     }
     return (struct unknown_state){.name = o->id,
-                                  .n_nodes = rows->n,
-                                  .nodes = nodes,
+                                  .n_nodes = all->nodes.n,
+                                  .nodes = all->nodes.at,
                                   .n = rows->n,
                                   .states = rows->keys,
                                   .probabilities = probabilities,
                                   .values = values};
 }
 
-size_t states_of_decision(struct arena *a, const struct figures *f, const struct weighing *w,
+size_t states_of_decision(struct arena *a, const struct figures *f,
                           const struct unknown_state **out)
 {
     const struct objects *all = &f->base->of[KIND_STATE];
     struct unknown_state *states = NEW_ARRAY(a, all->n, struct unknown_state);
     size_t n = 0;
-    for (size_t i = 0; i < all->n; i++)
-        if (reaches(f, w, all->at[i]))
-            states[n++] = state_of(a, f, w, all->at[i]);
+    for (size_t i = 0; i < all->n; i++) {
+        struct share_nodes shares = {{0}, {0}, NULL};
+        if (((const struct state *)all->at[i]->data)->is.n)
+            find_shares(a, f, all->at[i], &shares);
+        if (shares.nodes.n)
+            states[n++] = state_of(a, f, all->at[i], &shares);
+    }
     *out = states;
     return n;
 }

@@ -24,7 +24,7 @@ ohmen_status branching_sample(struct figures *f, struct arena *a, const struct c
 
 /* The unknown states of the register that have figures: those that reach something that was
  * compiled. */
-size_t states_of_decision(struct arena *a, const struct figures *f, const struct weighing *w,
+size_t states_of_decision(struct arena *a, const struct figures *f,
                           const struct unknown_state **out);
 
 #endif

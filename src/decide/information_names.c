@@ -97,7 +97,7 @@ void information_of_decision(struct figures *f, struct arena *a, struct weighing
                              const struct information_watch *watch, struct information_whole *out)
 {
     const struct unknown_state *states;
-    size_t n_states = states_of_decision(a, f, w, &states);
+    size_t n_states = states_of_decision(a, f, &states);
     struct information_sample sample = {0};
     *out = (struct information_whole){.w = w, .choice = choice_of_decision(a, f, w)};
     if (w->branching) {

@@ -95,8 +95,6 @@ static bool matters(const struct weighing *w, size_t hazard, const struct altern
 static void find_ends(struct job *j, const struct weighing *w, struct bad_ends *out)
 {
     const struct alternative *best = &w->alternatives.at[w->order[0]];
-    if (w->branching) /* no register is that of a branch: what holds depends on time and chance */
-        return;
     for (size_t i = 0; i < w->hazards.n; i++)
         if (matters(w, i, best))
             add_ends(j, w->hazards.at[i].id, w->hazards.at[i].now,

@@ -68,8 +68,6 @@ static const struct option *option_of(const struct memo *m, const char *id)
 static const char *options_words(const struct memo *m, const struct alternative *x)
 {
     struct text t;
-    if (m->w->branching)
-        return x->name;
     text_init(&t, m->j->arena);
     for (size_t i = 0; i < x->n; i++)
         text_printf(&t, "%s%s (%s)",
@@ -160,13 +158,6 @@ static void costs(struct memo *m)
                     money(m, value_of(m, x->present_damage)), m->w->horizon);
         return;
     }
-    if (m->w->branching) {
-        report_note(m->j->report, "costs",
-                    "Costs: as a present value %s, the same as %s in each year of the horizon.",
-                    money(m, value_of(m, x->present_cost)),
-                    money_rate(m, value_of(m, x->annual_cost)));
-        return;
-    }
     const char *once = investments(m, x);
     double yearly = running(m, x);
     report_note(m->j->report, "costs",
@@ -233,8 +224,6 @@ static void avoids(struct memo *m)
         report_note(m->j->report, "avoids", "Avoids: nothing. %s", why_nothing(m));
         return;
     }
-    if (m->w->branching) /* what it avoids is not the same each year */
-        return;
     const char *by = avoids_by_perspective(m);
     report_note(m->j->report, "avoids", "Avoids per year, once in service: %s (%s)%s%s.%s%s",
                 money_rate(m, value_of(m, x->avoids)), perspective_words(m->j),

@@ -387,7 +387,7 @@ static struct set behind_point(struct tree_world *w, const struct tree_step *ste
     for (size_t b = 0; b < step->n; b++) {
         struct set one = behind(w, step->branches[b], s);
         double weight[TREE_HIDDEN];
-        for (size_t k = 0; k < hidden(w); k++)
+        for (size_t k = 0; step->kind != TREE_CHOOSE && k < hidden(w); k++)
             weight[k] = step->kind == TREE_CHANCE
                             ? step->p[b]
                             : w->states[step->which].given[value_in(w, k, step->which)][b];
