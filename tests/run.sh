@@ -159,10 +159,10 @@ sanitize="$sanitize -Doptimization=1"
 
 job gcc gcc 1
 if [ $all = yes ]; then
-    export OHMEN_FEW=6 # one golden case in so many: gcc runs all, and clang prints the same
+    export OHMEN_FEW=8 # one golden case in so many: gcc runs all, and clang prints the same
     job clang clang 1
     compare gcc clang
-    export OHMEN_FEW=12
+    export OHMEN_FEW=16
     # shellcheck disable=SC2086
     job sanitize clang 4 $sanitize
 fi
