@@ -210,7 +210,7 @@ START_TEST(unknown_figures)
     } cases[] = {
         {"H0.individual-risk.G2", "\"H0\" has no figure \"individual-risk.G2\" (did you mean "},
         {"H0.individual-risk.G2@ST=bad", "\"H0\" has no figure \"individual-risk.G2\" (did you"},
-        {"H0.damage.o0.arc", "\"H0\" has no figure \"damage.o0.arc\": it is a mean over operating"},
+        {"H0.damage.o0.arc", "\"H0\" has no figure \"damage.o0.arc\": it is a mean over states"},
         {"H0.end.r0", "\"H0\" has no figure \"end.r0\": it is a mean over states"},
     };
     struct arena *a = arena_new(NULL);

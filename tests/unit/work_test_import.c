@@ -28,9 +28,9 @@ START_TEST(the_first_import_adds_everything)
 {
     struct arena *a = test_arena();
     const char *json = import_json(a, test_new(a), test_skerry_files(a));
-    ck_assert_uint_eq(test_count(json, "{\"change\": \"added\""), 172);
+    ck_assert_uint_eq(test_count(json, "{\"change\": \"added\""), 181);
     ck_assert_uint_eq(test_count(json, "{\"date\": \""), 20);
-    ck_assert_ptr_nonnull(strstr(json, "entry 1: 172 objects added"));
+    ck_assert_ptr_nonnull(strstr(json, "entry 1: 181 objects added"));
     ck_assert_ptr_nonnull(strstr(json, "20 observations added"));
     arena_free(a);
 }
