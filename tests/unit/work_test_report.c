@@ -4,6 +4,7 @@
 #include <string.h>
 
 #include "json_check.h"
+#include "moments.h"
 #include "work_test.h"
 
 /* As few as there may be: what is looked at here is not how sure it is. */
@@ -142,7 +143,7 @@ START_TEST(every_object_is_shown)
         const char *mark = "{\"id\": \"", *s = list(&m, sections[i]);
         while ((s = strstr(s, mark)) != NULL) {
             s += strlen(mark);
-            if (shown++ % 5 == 0) /* each is a job of its own */
+            if (shown++ % (5 * MOMENT_STEP) == 0) /* each is a job of its own */
                 show(&m, arena_strn(m.a, s, strcspn(s, "\"")));
         }
     }
