@@ -2,316 +2,13 @@
 /* Growing a tree: from the steps of the document to points and branches.
  *
  * Depth first in the order of names; a point is found again by its place in the document, its time,
- * what is in service, and what is believed. */
-#include "decide/branching_parts.h"
+ * what is in service, and what is believed (branching_standing.c). */
+#include "decide/branching_standing.h"
 
 #include <math.h>
-#include <stdio.h>
 
 #include "figure/horizon.h"
 #include "figure/service.h"
-
-#define SAME_BELIEF 1e9 /* parts into which beliefs are told apart */
-
-/* Times closer than this are one: some seconds, in years. */
-static const double SAME_TIME = 1e-7;
-
-/* Where one stands on the way. */
-struct standing {
-    double time;
-    struct path done;
-    const double *belief;
-    const char *path;
-};
-
-static size_t hidden_count(const struct growing *g)
-{
-    return g->b->worlds.hidden.n;
-}
-
-static const char *join_path(struct growing *g, const char *path, const char *label)
-{
-    return *path ? arena_printf(g->f->arena, "%s/%s", path, label) : label;
-}
-
-static ohmen_status fail_at(struct growing *g, const char *path, ohmen_error *e, const char *why)
-{
-    return error_set(e, OHMEN_COMPUTE, "\"%s\", at \"%s\": %s", g->b->weighing->id,
-                     *path ? path : "choose", why);
-}
-
-/* --- paths --- */
-
-static struct applied *applied_in(const struct path *p, const char *option)
-{
-    for (size_t i = 0; i < p->applied.n; i++)
-        if (text_equal(p->applied.at[i].option, option))
-            return &p->applied.at[i];
-    return NULL;
-}
-
-/* Copies are made before anything is changed: paths are shared. */
-static void path_apply(struct growing *g, struct path *p, const char *option, double later)
-{
-    struct path copy = {0};
-    bool there = false;
-    for (size_t i = 0; i < p->applied.n; i++) {
-        struct applied x = p->applied.at[i];
-        if (!there && text_compare(option, x.option) <= 0) {
-            *array_push(g->f->arena, &copy.applied) = (struct applied){option, later};
-            there = true;
-        }
-        if (!text_equal(x.option, option))
-            *array_push(g->f->arena, &copy.applied) = x;
-    }
-    if (!there)
-        *array_push(g->f->arena, &copy.applied) = (struct applied){option, later};
-    p->applied.at = copy.applied.at;
-    p->applied.n = copy.applied.n;
-    p->applied.cap = copy.applied.cap;
-}
-
-static void path_change(struct growing *g, struct path *p, const char *name,
-                        const struct node *change, double from)
-{
-    struct path copy = {0};
-    for (size_t i = 0; i < p->changed.n; i++)
-        *array_push(g->f->arena, &copy.changed) = p->changed.at[i];
-    *array_push(g->f->arena, &copy.changed) = (struct changed){name, change, from};
-    p->changed.at = copy.changed.at;
-    p->changed.n = copy.changed.n;
-    p->changed.cap = copy.changed.cap;
-}
-
-static bool has_name(const struct names *all, const char *name)
-{
-    for (size_t i = 0; i < all->n; i++)
-        if (text_equal(all->at[i], name))
-            return true;
-    return false;
-}
-
-static bool sets_states(const struct growing *g, const char *option)
-{
-    const struct hidden *h = &g->b->worlds.hidden;
-    for (size_t i = 0; i < h->n_states; i++)
-        if (state_renewed(h->states[i]->data, option))
-            return true;
-    return false;
-}
-
-/* Does it depend on the option having been applied what else may be, or what that brings? */
-static bool binds_others(const struct growing *g, const char *option)
-{
-    const struct objects *all = &g->f->base->of[KIND_OPTION];
-    const struct option *o = model_get(g->f->base, KIND_OPTION, option);
-    if (o->excludes.n || o->combine.n)
-        return true;
-    for (size_t i = 0; i < all->n; i++) {
-        const struct option *q = all->at[i]->data;
-        if (has_name(&q->excludes, option) || has_name(&q->requires, option))
-            return true;
-        for (size_t k = 0; k < q->combine.n; k++)
-            if (text_equal(q->combine.keys[k], option))
-                return true;
-    }
-    return false;
-}
-
-/* Does what comes depend on the option having been applied? One that only sets states leaves no
- * trace beside these; one that does not can be applied once. */
-static bool leaves_trace(struct growing *g, const struct standing *s, const struct applied *x)
-{
-    const struct option *o = model_get(g->f->base, KIND_OPTION, x->option);
-    return o->change->n > 0 || o->running || o->residual || binds_others(g, x->option) ||
-           (g->b->repeats && !sets_states(g, x->option)) ||
-           timeline_is_dated(g->f, &s->done, x, s->time);
-}
-
-/* What of the path matters from now on, as text. */
-static void write_path(struct growing *g, struct text *t, const struct standing *s)
-{
-    for (size_t i = 0; i < s->done.applied.n; i++) {
-        const struct applied *x = &s->done.applied.at[i];
-        if (!leaves_trace(g, s, x))
-            continue;
-        text_printf(t, "+%s", x->option);
-        if (timeline_is_dated(g->f, &s->done, x, s->time))
-            text_printf(t, ":%.17g", x->later);
-    }
-    for (size_t i = 0; i < s->done.changed.n; i++)
-        text_printf(t, "[%s]", s->done.changed.at[i].name);
-}
-
-/* What is possible, with its probability: to SAME_BELIEF. */
-static void write_belief(const struct growing *g, struct text *t, const double *belief)
-{
-    for (size_t k = 0; k < hidden_count(g); k++) {
-        unsigned long parts = (unsigned long)round(belief[k] * SAME_BELIEF);
-        if (parts)
-            text_printf(t, ";%zu:%lu", k, parts);
-    }
-}
-
-static const char *point_key(struct growing *g, const void *place, const struct standing *s)
-{
-    struct text t;
-    text_init(&t, g->f->arena);
-    text_printf(&t, "%p at %a", place, s->time);
-    write_path(g, &t, s);
-    write_belief(g, &t, s->belief);
-    return text_str(&t);
-}
-
-/* --- time --- */
-
-static struct move *add_move(struct growing *g, struct way *b, enum move_kind kind, double at)
-{
-    struct move *m = array_push(g->f->arena, &b->moves);
-    *m = (struct move){.kind = kind, .at = at, .to = at};
-    return m;
-}
-
-/* The option sets states: what is believed moves there. */
-static void reset_states(struct growing *g, struct way *b, struct standing *s, const char *option)
-{
-    const struct hidden *h = &g->b->worlds.hidden;
-    size_t *map = NEW_ARRAY(g->f->arena, h->n, size_t);
-    double *after = NEW_ARRAY(g->f->arena, h->n, double);
-    bool resets = false;
-    for (size_t k = 0; k < h->n; k++) {
-        map[k] = k;
-        for (size_t i = 0; i < h->n_states; i++) {
-            const char *to = state_renewed(h->states[i]->data, option);
-            const struct rows *values = state_values(h->states[i]->data);
-            for (size_t v = 0; to && v < values->n; v++)
-                if (text_equal(values->keys[v], to))
-                    map[k] = hidden_with(h, map[k], i, v);
-            resets = resets || to;
-        }
-        after[map[k]] += s->belief[k];
-    }
-    if (!resets)
-        return;
-    struct move *m = add_move(g, b, MOVE_RESET, s->time);
-    m->map = map;
-    m->what = option;
-    s->belief = after;
-}
-
-/* Options that begin, or are renewed, behind `from` and until `to`. */
-static void reset_between(struct growing *g, struct way *b, struct standing *s, double from,
-                          double to)
-{
-    for (size_t i = 0; i < s->done.applied.n; i++) {
-        const struct applied *x = &s->done.applied.at[i];
-        struct life life = life_later(g->f, x->option, x->later);
-        for (size_t k = 0; k <= life_renewals(&life); k++)
-            if (life_renewal(&life, k) > from && life_renewal(&life, k) <= to)
-                reset_states(g, b, s, x->option);
-    }
-}
-
-/* The next instant behind `from` at which an option begins or is renewed, or `to`. */
-static double next_reset(struct growing *g, const struct standing *s, double from, double to)
-{
-    for (size_t i = 0; i < s->done.applied.n; i++) {
-        const struct applied *x = &s->done.applied.at[i];
-        struct life life = life_later(g->f, x->option, x->later);
-        for (size_t k = 0; k <= life_renewals(&life); k++) {
-            double at = life_renewal(&life, k);
-            if (at > from && at < to)
-                to = at;
-        }
-    }
-    return to;
-}
-
-static ohmen_status move_beliefs(struct growing *g, struct world *w, struct standing *s,
-                                 double years, ohmen_error *e)
-{
-    const struct passage *p;
-    size_t n = hidden_count(g);
-    if (w->flows.n == 0)
-        return OHMEN_OK;
-    ohmen_status status = world_passage(&g->b->worlds, w, years, &p, e);
-    double *after = NEW_ARRAY(g->f->arena, n, double);
-    for (size_t i = 0; status == OHMEN_OK && i < n; i++)
-        for (size_t k = 0; k < n; k++)
-            after[k] += s->belief[i] * p->p[i * n + k];
-    s->belief = after;
-    return status;
-}
-
-/* The number of a stretch of time in a world. */
-static size_t span_of_move(struct growing *g, const struct move *m)
-{
-    const char *key = arena_printf(g->f->arena, "%p %a %a", (const void *)m->world, m->at, m->to);
-    void *known = strmap_get(&g->spans, key);
-    if (known)
-        return (size_t)known - 1;
-    strmap_set(g->f->arena, &g->spans, key, (void *)++g->b->n_spans);
-    return g->b->n_spans - 1;
-}
-
-/* One stretch with the same variant and without resets inside; by whole years where states change,
- * so that each year has its own damage. */
-static ohmen_status pass_stretch(struct growing *g, struct way *b, struct standing *s,
-                                 const struct variant *v, double to, ohmen_error *e)
-{
-    struct world *w;
-    ohmen_status status = world_of(&g->b->worlds, v, &w, e);
-    while (status == OHMEN_OK && s->time < to) {
-        double end = w->flows.n ? fmin(floor(s->time + SAME_TIME) + 1, to) : to;
-        end = to - end < SAME_TIME ? to : end;
-        struct move *m = add_move(g, b, MOVE_TIME, s->time);
-        m->to = end;
-        m->world = w;
-        m->span = span_of_move(g, m);
-        status = move_beliefs(g, w, s, end - s->time, e);
-        s->time = end;
-    }
-    return status;
-}
-
-static ohmen_status stretches_of(struct growing *g, const struct standing *s,
-                                 const struct stretches **out, ohmen_error *e)
-{
-    struct text t;
-    text_init(&t, g->f->arena);
-    for (size_t i = 0; i < s->done.applied.n; i++)
-        text_printf(&t, "+%s:%.17g", s->done.applied.at[i].option, s->done.applied.at[i].later);
-    for (size_t i = 0; i < s->done.changed.n; i++)
-        text_printf(&t, "[%s]%.17g", s->done.changed.at[i].name, s->done.changed.at[i].from);
-    struct stretches *known = strmap_get(&g->stretches, text_str(&t));
-    ohmen_status status = OHMEN_OK;
-    if (!known) {
-        known = NEW(g->f->arena, struct stretches);
-        status = timeline_cut_path(g->f, &s->done, g->horizon, known, e);
-        strmap_set(g->f->arena, &g->stretches, text_str(&t), known);
-    }
-    *out = known;
-    return status;
-}
-
-/* Lets time pass. */
-static ohmen_status pass(struct growing *g, struct way *b, struct standing *s, double to,
-                         ohmen_error *e)
-{
-    const struct stretches *cut;
-    to = fmin(to, g->horizon);
-    ohmen_status status = stretches_of(g, s, &cut, e);
-    for (size_t i = 0; status == OHMEN_OK && i < cut->n; i++) {
-        double end = fmin(cut->at[i].to, to);
-        while (status == OHMEN_OK && s->time < end && s->time >= cut->at[i].from) {
-            double from = s->time, until = next_reset(g, s, from, end);
-            status = pass_stretch(g, b, s, cut->at[i].variant, until, e);
-            if (status == OHMEN_OK)
-                reset_between(g, b, s, from, until);
-        }
-    }
-    return status;
-}
 
 /* --- steps --- */
 
@@ -333,7 +30,7 @@ static const char *excluded_by(const struct growing *g, const struct path *p, co
     for (size_t i = 0; i < p->applied.n; i++) {
         const char *other = p->applied.at[i].option;
         const struct option *q = model_get(g->f->base, KIND_OPTION, other);
-        if (has_name(&o->excludes, other) || has_name(&q->excludes, option))
+        if (standing_has_name(&o->excludes, other) || standing_has_name(&q->excludes, option))
             return other;
     }
     return NULL;
@@ -350,7 +47,7 @@ static const char *why_not(const struct growing *g, const struct standing *s, co
                             "applied",
                             other, option);
     for (size_t k = 0; k < o->requires.n; k++)
-        if (!applied_in(&s->done, o->requires.at[k]))
+        if (!standing_applied(&s->done, o->requires.at[k]))
             return arena_printf(g->f->arena,
                                 "the option \"%s\" requires \"%s\", which is not applied before it",
                                 option, o->requires.at[k]);
@@ -361,24 +58,24 @@ static const char *why_not(const struct growing *g, const struct standing *s, co
 static ohmen_status apply(struct growing *g, struct way *b, struct standing *s, const char *option,
                           ohmen_error *e)
 {
-    const struct applied *before = applied_in(&s->done, option);
+    const struct applied *before = standing_applied(&s->done, option);
     struct life life = life_later(g->f, option, s->time);
     const struct compiled *unused;
     ohmen_status status = cost_compile(g->f, option, &unused, e);
     if (status != OHMEN_OK)
         return status;
     if (before && (!g->b->repeats || life.renewed))
-        return fail_at(g, b->path, e,
-                       arena_printf(g->f->arena, "the option \"%s\" is applied twice", option));
+        return standing_fail(
+            g, b->path, e, arena_printf(g->f->arena, "the option \"%s\" is applied twice", option));
     const char *why = why_not(g, s, option);
     if (why)
-        return fail_at(g, b->path, e, why);
-    struct move *m = add_move(g, b, MOVE_APPLY, s->time);
+        return standing_fail(g, b->path, e, why);
+    struct move *m = standing_move(g, b, MOVE_APPLY, s->time);
     m->what = option;
     m->before = before ? before->later : -1;
-    path_apply(g, &s->done, option, s->time);
+    standing_apply(g, &s->done, option, s->time);
     if (life.begin <= s->time)
-        reset_states(g, b, s, option);
+        standing_reset(g, b, s, option);
     return OHMEN_OK;
 }
 
@@ -407,7 +104,7 @@ static void pay(struct growing *g, struct way *b, const struct standing *s,
 {
     if (s->time >= g->horizon - SAME_TIME)
         return;
-    struct move *m = add_move(g, b, MOVE_PAY, s->time);
+    struct move *m = standing_move(g, b, MOVE_PAY, s->time);
     m->paid = paid;
     m->what = what;
 }
@@ -432,11 +129,11 @@ static ohmen_status end_of_branch(struct growing *g, struct way *b, struct stand
 {
     const struct decision *d = g->b->weighing->decision;
     if (!d->every) {
-        ohmen_status status = pass(g, b, s, g->horizon, e);
+        ohmen_status status = standing_pass(g, b, s, g->horizon, e);
         return status == OHMEN_OK ? grow_point(g, POINT_END, NULL, s, b, e) : status;
     }
     double next = (floor(s->time / g->b->every + SAME_TIME) + 1) * g->b->every;
-    ohmen_status status = pass(g, b, s, next, e);
+    ohmen_status status = standing_pass(g, b, s, next, e);
     if (status != OHMEN_OK)
         return status;
     if (s->time >= g->horizon - SAME_TIME)
@@ -465,8 +162,8 @@ static ohmen_status take_step(struct growing *g, struct way *b, struct standing 
         double to = s->time + expr_constant(step->wait->expr);
         say(words, "wait %s", quantity_words(g, step->wait));
         if (to > g->horizon - SAME_TIME && !g->b->repeats)
-            return fail_at(g, b->path, e, "it waits beyond the horizon");
-        return pass(g, b, s, to, e);
+            return standing_fail(g, b->path, e, "it waits beyond the horizon");
+        return standing_pass(g, b, s, to, e);
     }
     if (step->apply) {
         say(words, "apply %s", step->apply);
@@ -476,7 +173,7 @@ static ohmen_status take_step(struct growing *g, struct way *b, struct standing 
         const char *name = arena_printf(g->f->arena, "%s: %s, change %zu", g->b->weighing->id,
                                         b->path, s->done.changed.n + 1);
         say(words, "%s", "change the register");
-        path_change(g, &s->done, name, step->change, s->time);
+        standing_change(g, &s->done, name, step->change, s->time);
     }
     return OHMEN_OK;
 }
@@ -527,7 +224,7 @@ static struct way *add_branch(struct growing *g, struct point *p, const char *la
 {
     struct way *b = &p->branches[p->n++];
     *b = (struct way){.label = label, .belief = belief, .probability = probability};
-    b->path = join_path(g, p->path, label);
+    b->path = standing_join(g, p->path, label);
     return b;
 }
 
@@ -535,7 +232,7 @@ static struct way *add_branch(struct growing *g, struct point *p, const char *la
 static double posterior(struct growing *g, const double *belief, const double *likelihood,
                         const double **out)
 {
-    size_t n = hidden_count(g);
+    size_t n = standing_hidden(g);
     double *after = NEW_ARRAY(g->f->arena, n, double), sum = 0;
     for (size_t k = 0; k < n; k++)
         sum += belief[k] * likelihood[k];
@@ -634,7 +331,7 @@ static const struct list *steps_behind(enum point_kind kind, const struct step *
 static size_t place_point(struct growing *g, enum point_kind kind, const void *place,
                           const struct standing *s, bool *known)
 {
-    const char *key = point_key(g, place, s);
+    const char *key = standing_key(g, place, s);
     void *at = strmap_get(&g->points, key);
     *known = at != NULL;
     if (at)
@@ -716,7 +413,7 @@ static bool sees_alike(const struct growing *g, size_t p, size_t q)
 /* One branch for each set of values that may be seen. */
 static void add_sights(struct growing *g, struct point *p)
 {
-    size_t n = hidden_count(g);
+    size_t n = standing_hidden(g);
     p->branches = NEW_ARRAY(g->f->arena, n, struct way);
     for (size_t k = 0; k < n; k++) {
         bool first = true;
@@ -749,7 +446,7 @@ static const char *state_words(struct growing *g, const struct standing *s, cons
     text_add(&t, seen);
     for (size_t i = 0; i < s->done.applied.n; i++) {
         const struct applied *x = &s->done.applied.at[i];
-        if (!leaves_trace(g, s, x))
+        if (!standing_leaves_trace(g, s, x))
             continue;
         text_printf(&t, "%s%s", t.n ? ", " : "", x->option);
         if (timeline_is_dated(g->f, &s->done, x, s->time))
@@ -782,12 +479,12 @@ static bool may_apply(struct growing *g, const struct standing *s, const struct 
 {
     const char *option = ((const struct step *const *)steps->at)[at]->apply;
     const struct option *o = model_get(g->f->base, KIND_OPTION, option);
-    if (applied_in(&s->done, option) && (!sets_states(g, option) || o->renewed))
+    if (standing_applied(&s->done, option) && (!standing_sets_states(g, option) || o->renewed))
         return false;
     if (excluded_by(g, &s->done, option))
         return false;
     for (size_t k = 0; k < o->requires.n; k++) {
-        bool there = applied_in(&s->done, o->requires.at[k]) != NULL;
+        bool there = standing_applied(&s->done, o->requires.at[k]) != NULL;
         for (size_t i = 0; i < at && !there; i++) {
             const char *before = ((const struct step *const *)steps->at)[i]->apply;
             there = before && text_equal(before, o->requires.at[k]);
@@ -823,7 +520,7 @@ static ohmen_status count_beliefs(struct growing *g, const struct standing *s, o
     struct text t;
     text_init(&t, g->f->arena);
     text_printf(&t, "%zu", stage);
-    write_belief(g, &t, s->belief);
+    standing_write_belief(g, &t, s->belief);
     if (strmap_has(&g->believed, text_str(&t)))
         return OHMEN_OK;
     strmap_set(g->f->arena, &g->believed, text_str(&t), NULL);
@@ -848,7 +545,7 @@ static ohmen_status grow_choice(struct growing *g, const struct standing *at, co
     if (status != OHMEN_OK)
         return status;
     struct point p = g->b->points.at[number];
-    if (!*seen && hidden_count(g) > 1)
+    if (!*seen && standing_hidden(g) > 1)
         seen = belief_words(g, s.belief);
     p.is_stage = true;
     p.state = state_words(g, &s, seen);
@@ -857,9 +554,10 @@ static ohmen_status grow_choice(struct growing *g, const struct standing *at, co
         p.state = "as it is";
     add_possible(g, &p, &s);
     if (p.n == 0)
-        return fail_at(g, p.path, e, "no branch is possible any more; add one that does nothing");
+        return standing_fail(g, p.path, e,
+                             "no branch is possible any more; add one that does nothing");
     for (size_t i = 0; i < p.n; i++)
-        p.branches[i].path = join_path(g, p.path, p.branches[i].label);
+        p.branches[i].path = standing_join(g, p.path, p.branches[i].label);
     struct step stage = {.choose = g->b->weighing->decision->choose};
     for (size_t i = 0; status == OHMEN_OK && i < p.n; i++)
         status = grow_branch(g, &p, &p.branches[i],
@@ -885,7 +583,7 @@ static ohmen_status grow_sight(struct growing *g, const struct standing *at, siz
         struct way *b = &p.branches[i];
         struct standing s = *at;
         s.belief = b->belief;
-        b->path = join_path(g, p.path, b->label);
+        b->path = standing_join(g, p.path, b->label);
         b->steps = "";
         b->value_figure = b->probability_figure = b->reach_figure = FIGURE_NONE;
         status = grow_choice(g, &s, b->label, &b->to, e);
@@ -920,7 +618,7 @@ static ohmen_status grow_nothing(struct growing *g, ohmen_error *e)
                       .probability = 1};
     b->value_figure = b->probability_figure = b->reach_figure = FIGURE_NONE;
     g->b->nothing = b;
-    ohmen_status status = pass(g, b, &s, g->horizon, e);
+    ohmen_status status = standing_pass(g, b, &s, g->horizon, e);
     return status == OHMEN_OK ? grow_point(g, POINT_END, NULL, &s, b, e) : status;
 }
 
